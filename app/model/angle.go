@@ -1,0 +1,138 @@
+package model
+
+import (
+	"errors"
+	"fmt"
+	"math"
+	"strconv"
+	"strings"
+	"unicode"
+
+	"pavilight/facets"
+)
+
+// ParseAngle reads an angle as people write it: 41.8, 41,8, 41.8°, 41°48',
+// 41 deg 48 min, 41° 48' 30". Degrees must be whole where minutes follow, and
+// minutes whole where seconds follow. The error says what was expected.
+func ParseAngle(text string) (facets.Angle, error) {
+	parts, err := numbersWithUnits(text)
+	if err != nil {
+		return 0, err
+	}
+	const example = "write it as 41.8, 41,8 or 41°48'"
+	if len(parts) == 0 {
+		return 0, errors.New("no angle given; " + example)
+	}
+	degrees := 0.0
+	scale := 1.0 // degrees in one unit of the part
+	for i, p := range parts {
+		if got, want := p.unit, angleUnits[i]; got != want && !(got == "" && i == 0) {
+			return 0, fmt.Errorf("%q is not an angle; %s", strings.TrimSpace(text), example)
+		}
+		if i > 0 && parts[i-1].value != math.Trunc(parts[i-1].value) {
+			return 0, fmt.Errorf("a fraction of %s cannot be followed by %s; %s",
+				angleWords[i-1], angleWords[i], example)
+		}
+		if i > 0 && p.value >= 60 {
+			return 0, fmt.Errorf("%s go from 0 to 59; %s", angleWords[i], example)
+		}
+		degrees += p.value * scale
+		scale /= 60
+	}
+	if degrees >= 360 {
+		return 0, errors.New("an angle of a full turn or more; " + example)
+	}
+	return facets.Angle(degrees) * facets.Degree, nil
+}
+
+// FormatAngle writes an angle in degrees with the two decimals that a cutter
+// sets, and more, up to six, where the angle has them.
+func FormatAngle(a facets.Angle) string {
+	deg := a.Degrees()
+	const written = 5e-7 // half of the last decimal that is ever written
+	for decimals := 2; decimals < 6; decimals++ {
+		text := strconv.FormatFloat(deg, 'f', decimals, 64)
+		if back, _ := strconv.ParseFloat(text, 64); math.Abs(back-deg) < written {
+			return text
+		}
+	}
+	return strconv.FormatFloat(deg, 'f', 6, 64)
+}
+
+// ParseNumber reads a plain number with a point or a comma before its decimals
+// and with the unit after it or without.
+func ParseNumber(text, unit string) (float64, error) {
+	text = strings.TrimSpace(strings.TrimSuffix(strings.TrimSpace(text), unit))
+	parts, err := numbersWithUnits(text)
+	if err != nil {
+		return 0, err
+	}
+	if len(parts) != 1 || parts[0].unit != "" {
+		return 0, fmt.Errorf("%q is not a number; write it as 8.5 or 8,5", text)
+	}
+	return parts[0].value, nil
+}
+
+var (
+	angleUnits = [...]string{"°", "'", `"`, ""}
+	angleWords = [...]string{"degrees", "minutes", "seconds", ""}
+)
+
+// quantity is one number and the unit that follows it, in the short form.
+type quantity struct {
+	value float64
+	unit  string
+}
+
+// numbersWithUnits splits text into at most three numbers with their units.
+func numbersWithUnits(text string) ([]quantity, error) {
+	var parts []quantity
+	rest := strings.TrimSpace(text)
+	for rest != "" {
+		end := strings.IndexFunc(rest, func(r rune) bool { return !unicode.IsDigit(r) && r != '.' && r != ',' })
+		if end < 0 {
+			end = len(rest)
+		}
+		digits := strings.ReplaceAll(rest[:end], ",", ".")
+		value, err := strconv.ParseFloat(digits, 64)
+		if err != nil || len(digits) > 24 || len(parts) == 3 {
+			return nil, fmt.Errorf("%q is not a number", shorten(strings.TrimSpace(text)))
+		}
+		rest = strings.TrimSpace(rest[end:])
+		end = strings.IndexFunc(rest, unicode.IsDigit)
+		if end < 0 {
+			end = len(rest)
+		}
+		unit, known := unitOf(strings.TrimSpace(rest[:end]))
+		if !known {
+			return nil, fmt.Errorf("%q is not a number", shorten(strings.TrimSpace(text)))
+		}
+		parts = append(parts, quantity{value, unit})
+		rest = rest[end:]
+	}
+	return parts, nil
+}
+
+// unitOf returns the short form of a unit of angle, "" for none.
+func unitOf(word string) (string, bool) {
+	switch strings.ToLower(strings.TrimSuffix(word, ".")) {
+	case "":
+		return "", true
+	case "°", "º", "deg", "degree", "degrees":
+		return "°", true
+	case "'", "′", "’", "min", "minute", "minutes":
+		return "'", true
+	case `"`, "″", "”", "''", "′′", "sec", "second", "seconds":
+		return `"`, true
+	}
+	return "", false
+}
+
+// shorten keeps what was typed or pasted short enough to be shown in a message.
+func shorten(text string) string {
+	const most = 40
+	if r := []rune(text); len(r) > most {
+		return string(r[:most]) + "…"
+	}
+	return text
+}
