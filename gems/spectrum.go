@@ -58,5 +58,5 @@ func SpectrumWavelength(u float64) Wavelength {
 	v, s := luminous[i], luminous[i+1]-luminous[i]
 	area := (target - luminousSum[i]) / luminousStep
 	x := 2 * area / (v + math.Sqrt(v*v+2*s*area))
-	return visibleLo + luminousStep*(Wavelength(i)+Wavelength(x))
+	return min(visibleHi, visibleLo+luminousStep*(Wavelength(i)+Wavelength(x))) // rounding may pass the end
 }
