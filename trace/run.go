@@ -13,6 +13,11 @@ package trace
 import (
 	"context"
 	"errors"
+	"fmt"
+	"math"
+	"runtime"
+	"sync"
+	"sync/atomic"
 	"time"
 
 	"pavilight/facets"
@@ -65,15 +70,19 @@ type Column struct {
 	Ledger        Ledger       // means over the outline as seen
 	StandardError Ledger       // of those means, from independent scramblings
 	Lit           Lit
-	From          [18]float64 // returned + head by angle from the eye, 5-degree bins
-	LeakyArea     float64     // share of rays with leaked > 0.5
-	WindowedArea  float64     // share of rays of which more than half leaves downward where they first meet the pavilion
-	Segments      int64       // facet hits inside the stone
+	From          [fromBins]float64 // returned + head by angle from the eye, bins of 5 degrees
+	FromError     [fromBins]float64 // their standard errors
+	LeakyArea     float64           // share of rays with leaked > 0.5
+	LeakyError    float64           // its standard error
+	WindowedArea  float64           // share of rays of which more than half leaves downward where they first meet the pavilion
+	WindowedError float64           // its standard error
+	Segments      int64             // facet hits inside the stone
 	Map           *Map
 }
 
-// Lit is the luminance under the even light relative to a white diffuser in the
-// same place: its surface, returned and leaked parts and their sum.
+// Lit is the luminance under the even light, relative to a white diffuser that lies
+// in the same place facing the eye with no head in the way: its surface, returned
+// and leaked parts and their sum.
 type Lit struct {
 	Surface  float64 `json:"surface"`
 	Returned float64 `json:"returned"`
@@ -86,6 +95,325 @@ type Lit struct {
 // coarse first; the result it is given is its own to keep. When ctx is cancelled
 // Run returns the last complete result (nil if there is none) and the cause.
 // All goroutines that Run starts have returned before it does.
+//
+// The sample points are the same for every medium, and depend on the seed alone:
+// differences between media, and between stones of like outline, are more certain
+// than each column's own error says.
 func Run(ctx context.Context, scene Scene, settings Settings, report func(*Result)) (*Result, error) {
-	return nil, errors.New("not yet")
+	start := time.Now()
+	r, err := newRun(scene, settings)
+	if err != nil {
+		return nil, err
+	}
+	var last *Result
+	for !r.finished() {
+		if err := r.pass(ctx); err != nil {
+			return last, err
+		}
+		last = r.result()
+		last.Elapsed = time.Since(start)
+		if report != nil {
+			report(last)
+		}
+	}
+	return last, nil
+}
+
+// Each pass traces chunks of every scrambling, so that after any pass all
+// scramblings have traced alike. A chunk is some milliseconds of work, after which
+// a cancelled run stops.
+const (
+	chunkPoints     = 1024
+	mostChunksAPass = 16      // of each scrambling
+	mostPoints      = 1 << 30 // of each scrambling; the sequence has 2^32
+	leastRays       = 4       // a pixel, before the error alone may end a run
+)
+
+// run is the state of one call of Run.
+type run struct {
+	scene    Scene
+	settings Settings
+	tracer   *tracer
+	points   [scramblings]points
+	columns  []columnState
+
+	chunks int // of each scrambling traced so far
+	rays   int
+	error  float64 // largest standard error of any ledger entry
+
+	pixelsInside float64 // how many pixels show the stone
+}
+
+// columnState is what one medium has gathered.
+type columnState struct {
+	scrambled [scramblings]sums
+	mapped    *Map
+}
+
+func newRun(scene Scene, settings Settings) (*run, error) {
+	if err := settings.check(); err != nil {
+		return nil, err
+	}
+	if settings.Pixels == 0 {
+		settings.Pixels = 300
+	}
+	if settings.Error == 0 {
+		settings.Error = 0.0005
+	}
+	if settings.Workers == 0 {
+		settings.Workers = runtime.GOMAXPROCS(0)
+	}
+	r := &run{scene: scene, settings: settings, error: math.Inf(1)}
+
+	// Both ends of the range that will be asked for must be known; then all between are.
+	for _, w := range settings.wavelengths() {
+		if _, _, err := scene.indices(w); err != nil {
+			return nil, err
+		}
+	}
+	var err error
+	if r.tracer, err = newTracer(scene.Stone, settings.View, settings.Head); err != nil {
+		return nil, err
+	}
+	for i := range r.points {
+		r.points[i] = newPoints(settings.Seed, i)
+	}
+	r.columns = make([]columnState, len(scene.Media))
+	inside := r.tracer.outline.mask(settings.Pixels)
+	for _, in := range inside {
+		if in {
+			r.pixelsInside++
+		}
+	}
+	for i := range r.columns {
+		r.columns[i].mapped = &Map{
+			Pixels: settings.Pixels,
+			Span:   2 * r.tracer.outline.half * r.tracer.body.unit,
+			cells:  make([]cell, settings.Pixels*settings.Pixels),
+			inside: inside,
+		}
+	}
+	return r, nil
+}
+
+// check refuses settings that mean nothing.
+func (s Settings) check() error {
+	in := func(name string, v, lo, hi float64) error {
+		if v >= lo && v <= hi {
+			return nil
+		}
+		return fmt.Errorf("%s %v is outside %v to %v", name, v, lo, hi)
+	}
+	tilt := math.Abs(s.View.Tilt.Degrees())
+	if !(tilt < 90) {
+		return fmt.Errorf("tilt %v is outside -90° to 90°", s.View.Tilt)
+	}
+	if math.IsNaN(s.View.Turn.Degrees()) || math.IsInf(s.View.Turn.Degrees(), 0) {
+		return fmt.Errorf("turn is no angle")
+	}
+	return errors.Join(
+		in("head angle", s.Head.Degrees(), 0, 90),
+		in("luminance below", s.Below, 0, 1),
+		in("number of pixels", float64(s.Pixels), 0, 8192),
+		in("samples a pixel", float64(s.Samples), 0, 1<<20),
+		in("error", s.Error, 0, 1),
+		in("number of workers", float64(s.Workers), 0, 1<<12),
+	)
+}
+
+// wavelengths returns the ends of the range to be traced.
+func (s Settings) wavelengths() []gems.Wavelength {
+	if s.Wavelength != 0 {
+		return []gems.Wavelength{s.Wavelength}
+	}
+	return []gems.Wavelength{gems.SpectrumWavelength(0), gems.SpectrumWavelength(1)}
+}
+
+// indices returns the index of the stone and of each medium at w.
+func (s Scene) indices(w gems.Wavelength) (stone float64, media []float64, err error) {
+	if stone, err = s.Material.Index(w); err != nil {
+		return 0, nil, err
+	}
+	for _, m := range s.Media {
+		n, err := m.Index(w)
+		if err != nil {
+			return 0, nil, err
+		}
+		media = append(media, n)
+	}
+	return stone, media, nil
+}
+
+// finished reports whether the settings are met.
+func (r *run) finished() bool {
+	if r.chunks*chunkPoints >= mostPoints {
+		return true
+	}
+	if r.rays == 0 {
+		return false
+	}
+	pixels := r.pixelsInside
+	if r.settings.Samples > 0 {
+		return float64(r.rays) >= float64(r.settings.Samples)*pixels
+	}
+	return r.error < r.settings.Error && float64(r.rays) >= leastRays*pixels
+}
+
+// done estimates the share of the work that is done. The error of scrambled
+// points falls about as their number to the power of -3/4.
+func (r *run) done() float64 {
+	if r.finished() {
+		return 1
+	}
+	pixels := r.pixelsInside
+	if r.settings.Samples > 0 {
+		return float64(r.rays) / (float64(r.settings.Samples) * pixels)
+	}
+	return min(math.Pow(r.settings.Error/r.error, 4.0/3), float64(r.rays)/(leastRays*pixels), 0.99)
+}
+
+// pass traces further points of every scrambling: as many as there are already,
+// up to a bound.
+func (r *run) pass(ctx context.Context) error {
+	chunks := max(1, min(r.chunks, mostChunksAPass))
+	units := chunks * scramblings
+	done := make(chan *chunk)
+	var next atomic.Int64
+	var workers sync.WaitGroup
+	for range min(r.settings.Workers, units) {
+		workers.Go(func() {
+			for ctx.Err() == nil {
+				unit := int(next.Add(1)) - 1
+				if unit >= units {
+					return
+				}
+				done <- r.trace(unit, unit%scramblings, r.chunks+unit/scramblings)
+			}
+		})
+	}
+	go func() {
+		workers.Wait()
+		close(done)
+	}()
+
+	// Chunks are added in the order of their numbers, whoever traced them: sums of
+	// rounded numbers depend on their order.
+	waiting := map[int]*chunk{}
+	added := 0
+	for c := range done {
+		waiting[c.unit] = c
+		for waiting[added] != nil {
+			r.add(waiting[added])
+			delete(waiting, added)
+			added++
+		}
+	}
+	if added < units {
+		return context.Cause(ctx)
+	}
+	r.chunks += chunks
+	r.error = 0
+	for i := range r.columns {
+		_, se := means(&r.columns[i].scrambled)
+		r.error = max(r.error, se.ledger().Max())
+	}
+	return nil
+}
+
+// chunk is the outcome of a run of points of one scrambling.
+type chunk struct {
+	unit, scrambling int
+	entries          []entry
+	ledgers          [][]Ledger // by column, of each entry
+	sums             []sums     // by column
+}
+
+// entry is one viewing ray where it meets the stone.
+type entry struct {
+	point      uint32 // number of its sample point
+	facet      int32
+	pixel      int32
+	at         vec
+	wavelength gems.Wavelength
+}
+
+// trace follows one chunk of points in every medium.
+func (r *run) trace(unit, scrambling, number int) *chunk {
+	c := &chunk{unit: unit, scrambling: scrambling}
+	points := r.points[scrambling]
+	pixels, o := r.settings.Pixels, r.tracer.outline
+	for i := uint32(number * chunkPoints); i < uint32((number+1)*chunkPoints); i++ {
+		px, py, pw := points.at(i)
+		facet, x, ok := o.enter((2*px-1)*o.half, (2*py-1)*o.half)
+		if !ok {
+			continue
+		}
+		w := r.settings.Wavelength
+		if w == 0 {
+			w = gems.SpectrumWavelength(pw)
+		}
+		pixel := (pixels-1-int(py*float64(pixels)))*pixels + int(px*float64(pixels))
+		c.entries = append(c.entries, entry{i, int32(facet), int32(pixel), x, w})
+	}
+	c.sums = make([]sums, len(r.scene.Media))
+	for k, medium := range r.scene.Media {
+		ledgers := make([]Ledger, len(c.entries))
+		for i := range c.entries {
+			e := &c.entries[i]
+			// Both indices are known to be in range since newRun.
+			n, _ := r.scene.Material.Index(e.wavelength)
+			m, _ := medium.Index(e.wavelength)
+			ledgers[i] = r.tracer.follow(int(e.facet), e.at, n, m, newDice(points, e.point, k), &c.sums[k])
+			c.sums[k].addLedger(ledgers[i])
+		}
+		c.sums[k][rayCount] = float64(len(c.entries))
+		c.ledgers = append(c.ledgers, ledgers)
+	}
+	return c
+}
+
+// add takes a chunk into the run's sums and maps.
+func (r *run) add(c *chunk) {
+	r.rays += len(c.entries)
+	for k := range r.columns {
+		col := &r.columns[k]
+		col.scrambled[c.scrambling].add(&c.sums[k])
+		for i := range c.entries {
+			col.mapped.add(int(c.entries[i].pixel), &c.ledgers[k][i])
+		}
+	}
+}
+
+// result returns all that is known so far.
+func (r *run) result() *Result {
+	res := &Result{Rays: r.rays, Done: r.done()}
+	shown := r.settings.Wavelength
+	if shown == 0 {
+		shown = gems.LineD
+	}
+	stone, media, _ := r.scene.indices(shown) // in range since newRun
+	for k := range r.columns {
+		mean, se := means(&r.columns[k].scrambled)
+		c := Column{
+			Medium:        r.scene.Media[k],
+			IndexStone:    stone,
+			IndexMedium:   media[k],
+			Ledger:        mean.ledger(),
+			StandardError: se.ledger(),
+			Lit:           mean.lit(r.settings.Below),
+			LeakyArea:     mean[leakyArea],
+			LeakyError:    se[leakyArea],
+			WindowedArea:  mean[windowedArea],
+			WindowedError: se[windowedArea],
+			Map:           r.columns[k].mapped.clone(),
+		}
+		for s := range r.columns[k].scrambled {
+			c.Segments += int64(r.columns[k].scrambled[s][segmentCount])
+		}
+		copy(c.From[:], mean[firstFrom:])
+		copy(c.FromError[:], se[firstFrom:])
+		c.Critical, c.HasCritical = CriticalAngle(c.IndexStone, c.IndexMedium)
+		res.Columns = append(res.Columns, c)
+	}
+	return res
 }

@@ -1,0 +1,175 @@
+package trace
+
+import (
+	"fmt"
+	"math"
+
+	"pavilight/facets"
+)
+
+// body is a convex stone made ready for tracing. Positions in it are relative to
+// a point well inside the stone and in units of the radius of the sphere about
+// that point that just holds the stone, so the stone has size 1.
+//
+// With the origin inside, each facet's plane n.x = d becomes a row m = n/d, and
+// the stone is the set where its gauge g(x) = max m.x is at most 1. Along a ray
+// the gauge is convex and piecewise linear. So Newton's method, started outside
+// the stone, walks in toward the exit without ever passing it and, being on
+// straight pieces, ends exactly on it. Which row is largest at a point depends
+// only on the point's direction, and a map by direction names the one or few
+// rows that can be.
+type body struct {
+	middle vec     // of the stone's frame, mm: the origin of positions here
+	unit   float64 // mm: the length 1 here
+
+	rows   []vec // m of each facet
+	normal []vec // n of each facet, unit, out of the stone
+	side   []facets.Side
+
+	byDirection cells // of rows, by direction from the middle
+}
+
+// directions is how many cells the map by direction has across each of its two
+// halves; a power of two. The cost of building grows with it, the time a look-up
+// takes falls: BenchmarkBody and BenchmarkExit.
+const directions = 128
+
+// newBody prepares a stone for tracing. It fails for a stone that holds no point
+// clearly inside it.
+func newBody(s *facets.Stone) (*body, error) {
+	if len(s.Facets) < 4 || len(s.Facets) > math.MaxUint16 {
+		return nil, fmt.Errorf("stone %q has %d facets: tracing takes 4 to %d", s.Name, len(s.Facets), math.MaxUint16)
+	}
+	b := &body{}
+	for _, c := range s.Corners {
+		b.middle = b.middle.plus(1/float64(len(s.Corners)), fromMgl(c))
+	}
+	for _, c := range s.Corners {
+		b.unit = max(b.unit, fromMgl(c).plus(-1, b.middle).length())
+	}
+	// Start is measured from a sphere a little larger, so that rounding cannot
+	// place a corner outside it.
+	b.unit *= 1 + 1e-9
+	for i, f := range s.Facets {
+		n := fromMgl(f.Normal)
+		d := (f.Distance - n.dot(b.middle)) / b.unit
+		if !(d > 1e-7) || !(math.Abs(n.length()-1) < 1e-9) {
+			return nil, fmt.Errorf("stone %q: facet %d (tier %q) passes through the middle of the stone or has no direction", s.Name, i, f.Tier)
+		}
+		b.rows = append(b.rows, n.scale(1/d))
+		b.normal = append(b.normal, n)
+		b.side = append(b.side, f.Side)
+	}
+	b.mapDirections()
+	return b, nil
+}
+
+// mapDirections builds the map by direction. Directions are laid on two squares,
+// u = x/s and v = y/s with s = |x|+|y|+|z|, one for each sign of z; the stone's
+// directions fill the diamond |u|+|v| <= 1 of each. Within one octant the point
+// (u, v, ±(1-|u|-|v|)) lies on a plane, so each row's value there is linear.
+func (b *body) mapDirections() {
+	b.byDirection.spans = make([]span, 2*directions*directions)
+	fs := make([]plane2, len(b.rows))
+	const half = directions / 2
+	for octant := range 8 {
+		su, sv, sz := 1.0, 1.0, 1.0
+		if octant&1 != 0 {
+			su = -1
+		}
+		if octant&2 != 0 {
+			sv = -1
+		}
+		if octant&4 != 0 {
+			sz = -1
+		}
+		for j, m := range b.rows {
+			// In |u|, |v|, both growing away from the middle of the square.
+			fs[j] = plane2{sz * m.z, su*m.x - sz*m.z, sv*m.y - sz*m.z}
+		}
+		place := func(col, row int) int {
+			if su > 0 {
+				col += half
+			} else {
+				col = half - 1 - col
+			}
+			if sv > 0 {
+				row += half
+			} else {
+				row = half - 1 - row
+			}
+			if sz < 0 {
+				row += directions
+			}
+			return row*directions + col
+		}
+		// One cell more than the diamond needs, for look-ups that round across its rim.
+		outside := func(u, v, size float64) bool { return u+v > 1+1.0/half }
+		b.byDirection.fill(fs, 0, 0, 1, half, place, outside)
+	}
+}
+
+// largest returns the row that is largest at y and its value there: the gauge.
+func (b *body) largest(y vec) (row int, gauge float64) {
+	s := math.Abs(y.x) + math.Abs(y.y) + math.Abs(y.z)
+	const half = directions / 2
+	k := half / s
+	col, line := int(y.x*k+half), int(y.y*k+half)
+	// y.x = s, at the rim of the square, belongs to the last cell.
+	col, line = min(col, directions-1), min(line, directions-1)
+	if y.z < 0 {
+		line += directions
+	}
+	sp := b.byDirection.spans[line*directions+col]
+	names := b.byDirection.names[sp.first : sp.first+sp.n]
+	row = int(names[0])
+	gauge = b.rows[row].dot(y)
+	for _, j := range names[1:] {
+		if g := b.rows[j].dot(y); g > gauge {
+			row, gauge = int(j), g
+		}
+	}
+	return row, gauge
+}
+
+// onExit is how far, in units of the stone, a Newton step may still move when it
+// counts as standing on the exit: some rounding errors of a point of size 1. Where
+// facets meet, rows tie within rounding and steps of that size could alternate.
+const onExit = 1e-14
+
+// exit returns the facet through which the ray from x along the unit vector d
+// leaves the stone and how far that is, at least 0. x lies inside the stone or on
+// it; a facet that d leads away from is never chosen.
+func (b *body) exit(x, d vec) (facet int, s float64) {
+	// From the sphere that holds the stone, or just outside it.
+	xd := x.dot(d)
+	s = math.Sqrt(max(0, xd*xd+1-x.dot(x))) - xd
+	for {
+		j, _ := b.largest(x.plus(s, d))
+		m := b.rows[j]
+		slope := m.dot(d)
+		if slope <= 0 {
+			// Rounding at a corner on the sphere itself: the step is already nil.
+			return b.exitSlowly(x, d)
+		}
+		next := (1 - m.dot(x)) / slope
+		if next > s-onExit {
+			return j, max(0, min(next, s))
+		}
+		s = next
+	}
+}
+
+// exitSlowly does what exit does by asking every facet: the nearest plane that
+// the ray runs toward. It never fails.
+func (b *body) exitSlowly(x, d vec) (facet int, s float64) {
+	s = math.Inf(1)
+	for j, m := range b.rows {
+		if slope := m.dot(d); slope > 0 {
+			if t := (1 - m.dot(x)) / slope; t < s {
+				facet, s = j, t
+			}
+		}
+	}
+	return facet, max(0, s)
+}

@@ -1,0 +1,166 @@
+package trace
+
+import (
+	"math"
+
+	"pavilight/facets"
+)
+
+// faintShare is the share of a viewing ray below which its path is not split any
+// more: it takes the whole exit or the whole reflection, with probabilities T and
+// R. That is unbiased and keeps the ledger's sum.
+const faintShare = 1e-4
+
+// mostBounces ends a path that will not leave; what it carries is unresolved. A
+// path that is totally reflected for ever must be ended, and only such a path
+// comes near this number.
+const mostBounces = 10000
+
+// tracer follows viewing rays through one body as one eye sees it.
+type tracer struct {
+	body    *body
+	outline *outline
+	toEye   []float64 // cosine between each facet's normal and the eye's direction
+	headCos float64   // light that leaves closer to the eye than this comes from the head
+	faint   float64   // faintShare, but where tests compare whole paths
+	bins    angleBins
+}
+
+func newTracer(s *facets.Stone, view View, head facets.Angle) (*tracer, error) {
+	b, err := newBody(s)
+	if err != nil {
+		return nil, err
+	}
+	t := &tracer{body: b, headCos: 2, faint: faintShare, bins: newAngleBins()}
+	if head > 0 {
+		t.headCos = math.Cos(head.Radians())
+	}
+	corners := make([]vec, len(s.Corners))
+	for i, c := range s.Corners {
+		corners[i] = fromMgl(c).plus(-1, b.middle).scale(1 / b.unit)
+	}
+	t.outline = newOutline(b, view.frame(), corners)
+	for _, n := range b.normal {
+		t.toEye = append(t.toEye, n.dot(t.outline.eye))
+	}
+	return t, nil
+}
+
+// follow sends one unit of viewing ray into the stone through a facet at x and
+// returns its ledger. n is the index of the stone, m that of the medium, at the
+// ray's wavelength. What is not in the ledger goes into sums: where returned
+// light comes from, and the shares of area.
+//
+// At each facet the two polarisations are averaged.
+func (t *tracer) follow(facet int, x vec, n, m float64, d dice, sums *sums) (l Ledger) {
+	b, eye := t.body, t.outline.eye
+
+	// Split at the first surface.
+	cosI := t.toEye[facet]
+	at := Fresnel(m, n, cosI)
+	l.Surface = at.Mean()
+	t.litSurface(facet, l.Surface, sums)
+	if at.Total {
+		return l
+	}
+	dir := refract(eye.scale(-1), b.normal[facet].scale(-1), m/n, cosI, at.CosT)
+	w := 1 - l.Surface
+	eta := n / m
+	metPavilion := false
+
+	for range mostBounces {
+		// Go to the next facet.
+		j, s := b.exit(x, dir)
+		x = x.plus(s, dir)
+		sums[segmentCount]++
+		cosI := min(1, dir.dot(b.normal[j]))
+
+		// Shed what is transmitted, or all or nothing of a faint path.
+		at := Fresnel(n, m, cosI)
+		leaves := w * (1 - at.Mean())
+		if w < t.faint && leaves > 0 {
+			if d.roll() < 1-at.Mean() {
+				leaves = w
+			} else {
+				leaves = 0
+			}
+		}
+		down := 0.0
+		if leaves > 0 {
+			up := eta*dir.dot(eye) + (at.CosT-eta*cosI)*t.toEye[j]
+			if up <= 0 {
+				l.Leaked += leaves
+				down = leaves
+			} else {
+				if up > t.headCos {
+					l.Head += leaves
+				} else {
+					l.Returned += leaves
+				}
+				sums[firstFrom+t.bins.of(up)] += leaves
+			}
+			w -= leaves
+		}
+		if !metPavilion && b.side[j] == facets.Pavilion {
+			metPavilion = true
+			if down > 0.5 {
+				sums[windowedArea]++
+			}
+		}
+		if w <= 0 {
+			break
+		}
+
+		// Reflect the rest.
+		dir = dir.plus(-2*cosI, b.normal[j])
+	}
+	l.Unresolved = w
+	if l.Leaked > 0.5 {
+		sums[leakyArea]++
+	}
+	return l
+}
+
+// litSurface notes what the first surface shows under the even light: the light
+// from above where it mirrors that way, the head where it mirrors the head, what
+// lies below where it mirrors downward.
+func (t *tracer) litSurface(facet int, r float64, sums *sums) {
+	c := t.toEye[facet]
+	up := 2*c*c - 1
+	switch {
+	case up <= 0:
+		sums[mirrorsBelow] += r
+	case up <= t.headCos:
+		sums[mirrorsLight] += r
+	}
+}
+
+// angleBins sorts directions by their angle from the eye into bins of 5 degrees.
+type angleBins struct {
+	least [19]float64 // cosine at the far edge of each bin; bin k holds least[k] < cos <= least[k-1]
+	guess [65]uint8   // bin of the cosine k/64
+}
+
+func newAngleBins() (a angleBins) {
+	for k := range 18 {
+		a.least[k] = math.Cos(float64(k+1) * 5 * math.Pi / 180)
+	}
+	a.least[17] = 0
+	a.least[18] = -1
+	for k := range a.guess {
+		c := float64(k+1) / 64
+		for c < 1 && c <= a.least[a.guess[k]] {
+			a.guess[k]++
+		}
+	}
+	return a
+}
+
+// of returns the bin of a direction whose cosine to the eye lies in (0, 1].
+func (a *angleBins) of(cos float64) int {
+	k := int(a.guess[min(64, int(cos*64))])
+	for cos <= a.least[k] && k < 17 {
+		k++
+	}
+	return k
+}

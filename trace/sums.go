@@ -1,0 +1,75 @@
+package trace
+
+import "math"
+
+// sums holds what is added up over rays, one number a slot.
+type sums [slots]float64
+
+// The slots of sums after the ledger's entries, which come first in its order.
+const (
+	mirrorsLight = int(quantities) + iota // first surface mirrors the light above
+	mirrorsBelow                          // first surface mirrors what lies below
+	leakyArea                             // rays with leaked > 0.5
+	windowedArea                          // rays that see through the pavilion
+	segmentCount                          // facet hits inside the stone
+	rayCount
+	firstFrom // bins of returned + head by angle from the eye
+	slots     = firstFrom + fromBins
+)
+
+// fromBins is how many bins of 5 degrees there are from the eye to the horizon.
+const fromBins = 18
+
+func (s *sums) addLedger(l Ledger) {
+	s[Surface] += l.Surface
+	s[Returned] += l.Returned
+	s[Head] += l.Head
+	s[Leaked] += l.Leaked
+	s[Absorbed] += l.Absorbed
+	s[Unresolved] += l.Unresolved
+}
+
+func (s *sums) add(o *sums) {
+	for i := range s {
+		s[i] += o[i]
+	}
+}
+
+// ledger reads the ledger's slots.
+func (s *sums) ledger() Ledger {
+	return Ledger{s[Surface], s[Returned], s[Head], s[Leaked], s[Absorbed], s[Unresolved]}
+}
+
+// means returns the mean over rays of every slot, and its standard error from the
+// spread of the means of independent scramblings. Both are 0 without a ray.
+func means(scrambled *[scramblings]sums) (mean, standardError sums) {
+	var total sums
+	for r := range scrambled {
+		total.add(&scrambled[r])
+	}
+	if total[rayCount] == 0 {
+		return sums{}, sums{}
+	}
+	for i := range mean {
+		mean[i] = total[i] / total[rayCount]
+		var spread float64
+		for r := range scrambled {
+			d := scrambled[r][i]/scrambled[r][rayCount] - mean[i]
+			spread += d * d
+		}
+		standardError[i] = math.Sqrt(spread / (scramblings * (scramblings - 1)))
+	}
+	return mean, standardError
+}
+
+// lit reads what is seen under the even light when what lies below the stone has
+// the luminance below.
+func (s *sums) lit(below float64) Lit {
+	l := Lit{
+		Surface:  s[mirrorsLight] + below*s[mirrorsBelow],
+		Returned: s[Returned],
+		Leaked:   below * s[Leaked],
+	}
+	l.Sum = l.Surface + l.Returned + l.Leaked
+	return l
+}
