@@ -23,7 +23,9 @@ type tracer struct {
 	toEye   []float64 // cosine between each facet's normal and the eye's direction
 	headCos float64   // light that leaves closer to the eye than this comes from the head
 	faint   float64   // faintShare, but where tests compare whole paths
-	bins    angleBins
+
+	averaged bool // the two polarisations are averaged at every facet
+	bins     angleBins
 }
 
 func newTracer(s *facets.Stone, view View, head facets.Angle) (*tracer, error) {
@@ -50,8 +52,6 @@ func newTracer(s *facets.Stone, view View, head facets.Angle) (*tracer, error) {
 // returns its ledger. n is the index of the stone, m that of the medium, at the
 // ray's wavelength. What is not in the ledger goes into sums: where returned
 // light comes from, and the shares of area.
-//
-// At each facet the two polarisations are averaged.
 func (t *tracer) follow(facet int, x vec, n, m float64, d dice, sums *sums) (l Ledger) {
 	b, eye := t.body, t.outline.eye
 
@@ -64,7 +64,7 @@ func (t *tracer) follow(facet int, x vec, n, m float64, d dice, sums *sums) (l L
 		return l
 	}
 	dir := refract(eye.scale(-1), b.normal[facet].scale(-1), m/n, cosI, at.CosT)
-	w := 1 - l.Surface
+	light := enterBeam(at, dir, b.normal[facet])
 	eta := n / m
 	metPavilion := false
 
@@ -74,47 +74,49 @@ func (t *tracer) follow(facet int, x vec, n, m float64, d dice, sums *sums) (l L
 		x = x.plus(s, dir)
 		sums[segmentCount]++
 		cosI := min(1, dir.dot(b.normal[j]))
-
-		// Shed what is transmitted, or all or nothing of a faint path.
 		at := Fresnel(n, m, cosI)
-		leaves := w * (1 - at.Mean())
-		if w < t.faint && leaves > 0 {
-			if d.roll() < 1-at.Mean() {
-				leaves = w
-			} else {
-				leaves = 0
-			}
+
+		// Shed what goes through, or all or nothing of a faint path.
+		all := light.i
+		var through float64
+		if t.averaged {
+			through = light.average(at)
+		} else {
+			through = light.reflect(at, b.normal[j])
 		}
-		down := 0.0
-		if leaves > 0 {
+		if all < t.faint && through > 0 {
+			through = light.decide(all, through, d.roll())
+		}
+
+		// Put it down where it goes.
+		leaked := false
+		if through > 0 {
 			up := eta*dir.dot(eye) + (at.CosT-eta*cosI)*t.toEye[j]
-			if up <= 0 {
-				l.Leaked += leaves
-				down = leaves
-			} else {
-				if up > t.headCos {
-					l.Head += leaves
-				} else {
-					l.Returned += leaves
-				}
-				sums[firstFrom+t.bins.of(up)] += leaves
+			switch t.goes(up) {
+			case Leaked:
+				l.Leaked += through
+				leaked = true
+			case Head:
+				l.Head += through
+			default:
+				l.Returned += through
 			}
-			w -= leaves
+			if !leaked {
+				sums[firstFrom+t.bins.of(up)] += through
+			}
 		}
 		if !metPavilion && b.side[j] == facets.Pavilion {
 			metPavilion = true
-			if down > 0.5 {
+			if leaked && through > 0.5 {
 				sums[windowedArea]++
 			}
 		}
-		if w <= 0 {
+		if light.i <= 0 {
 			break
 		}
-
-		// Reflect the rest.
 		dir = dir.plus(-2*cosI, b.normal[j])
 	}
-	l.Unresolved = w
+	l.Unresolved = light.i
 	if l.Leaked > 0.5 {
 		sums[leakyArea]++
 	}

@@ -12,6 +12,11 @@ type Reflection struct {
 	Rs, Rp float64 // power reflectances of s- and p-polarised light, in [0, 1]
 	CosT   float64 // cosine of the refracted direction; 0 under total reflection
 	Total  bool    // total internal reflection: Rs = Rp = 1
+
+	// rs rp* = InStep + i Apart, the product of the amplitude reflectances, tells
+	// how the two polarisations stay together. Under total reflection it is
+	// exp(i delta), delta the phase by which the s part is ahead.
+	InStep, Apart float64
 }
 
 // Mean returns the reflectance of unpolarised light.
@@ -22,8 +27,9 @@ func (r Reflection) Mean() float64 { return (r.Rs + r.Rp) / 2 }
 // are positive. At grazing incidence (cosI = 0) everything is reflected; at
 // equal indices nothing is.
 //
-// Fresnel's equations for power: Born & Wolf, Principles of Optics, 7th ed.,
-// section 1.5.2, equations (21) and (34).
+// Fresnel's equations: Born & Wolf, Principles of Optics, 7th ed., section 1.5.2,
+// equation (21a) for the amplitudes, with its signs: at normal incidence rp = -rs.
+// Total reflection: section 1.5.4, equation (60) for the phase.
 func Fresnel(n1, n2, cosI float64) Reflection {
 	eta := n1 / n2
 	cos2T := 1 - eta*eta*(1-cosI*cosI)
@@ -31,12 +37,20 @@ func Fresnel(n1, n2, cosI float64) Reflection {
 		if eta == 1 { // grazing an interface that is none
 			return Reflection{}
 		}
-		return Reflection{Rs: 1, Rp: 1, Total: cos2T < 0 || eta > 1}
+		// tan(delta/2) = cosI sqrt(sin2I - nu2) / sin2I with nu = n2/n1
+		sin2I := 1 - cosI*cosI
+		k := cosI / (eta * sin2I)
+		half2 := -cos2T * k * k // its square
+		return Reflection{
+			Rs: 1, Rp: 1, Total: cos2T < 0 || eta > 1,
+			InStep: (1 - half2) / (1 + half2),
+			Apart:  2 * k * math.Sqrt(-cos2T) / (1 + half2),
+		}
 	}
 	cosT := math.Sqrt(cos2T)
 	rs := (n1*cosI - n2*cosT) / (n1*cosI + n2*cosT)
 	rp := (n2*cosI - n1*cosT) / (n2*cosI + n1*cosT)
-	return Reflection{Rs: rs * rs, Rp: rp * rp, CosT: cosT}
+	return Reflection{Rs: rs * rs, Rp: rp * rp, CosT: cosT, InStep: rs * rp}
 }
 
 // CriticalAngle returns the angle of incidence, from the normal, beyond which

@@ -44,6 +44,7 @@ type Settings struct {
 	View       View
 	Head       facets.Angle    // half-angle of the cone that the viewer's head blocks; 0 for none
 	Wavelength gems.Wavelength // nm; 0 for the spectrum, equal energy weighted by V(lambda), 400 to 700 nm
+	Averaged   bool            // average the two polarisations at every facet instead of carrying the state of the light
 	Below      float64         // luminance of what lies under the stone, 0 to 1 (white paper)
 	Pixels     int             // of a map's edge; 0 means 300
 	Samples    int             // mean rays per pixel at which tracing stops; 0 means until Error is reached
@@ -175,6 +176,7 @@ func newRun(scene Scene, settings Settings) (*run, error) {
 	if r.tracer, err = newTracer(scene.Stone, settings.View, settings.Head); err != nil {
 		return nil, err
 	}
+	r.tracer.averaged = settings.Averaged
 	for i := range r.points {
 		r.points[i] = newPoints(settings.Seed, i)
 	}
