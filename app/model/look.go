@@ -1,0 +1,449 @@
+package model
+
+import (
+	"context"
+	"errors"
+	"image"
+	"runtime"
+	"slices"
+	"sync/atomic"
+	"time"
+
+	"pavilight/app/picture"
+	"pavilight/facets"
+	"pavilight/gems"
+	"pavilight/trace"
+)
+
+// Subject is a stone ready to be looked at.
+type Subject struct {
+	Stone    *facets.Stone
+	Material *gems.Material
+}
+
+// Rows is how many quantities the grid of maps shows at once.
+const Rows = 2
+
+// Look is the state behind the maps: what is traced, how far it has come and what
+// was found so far. A change of stone or settings ends the run under way as soon
+// as that has given its first, coarse answer, and starts another; a stone that
+// cannot be had leaves the last good one where it is.
+type Look struct {
+	Subject Subject          // the last stone that could be had; its Stone is nil before the first
+	Frame   *Frame           // the maps; nil before the first answer
+	Trouble error            // why the latest plan or settings could not be shown; nil if they are
+	Media   []*gems.Material // one column each
+	Row     [Rows]trace.Quantity
+	Pointer Pointer
+
+	do       func(func())
+	onChange func(Change)
+	trace    tracing
+	settings trace.Settings
+	maps     [quantityCount]*picture.ColourMap
+
+	latest  request // what should be shown
+	waiting bool    // latest has not been started yet
+	running *run
+	number  int
+	stopped bool // by the user; a change starts anew
+	buffers buffers
+}
+
+// Change says what an onChange is about.
+type Change int
+
+// The changes, one at a time.
+const (
+	StoneChanged   Change = iota // Subject or Trouble
+	MapsChanged                  // Frame, and with it the ledger
+	StateChanged                 // Progress
+	PointerChanged               // Pointer
+)
+
+// Pointer is where the maps are being asked, in shares of the picture from its top
+// left corner.
+type Pointer struct {
+	Over bool
+	X, Y float64
+}
+
+// Frame is one state of the maps. It is replaced, never changed; its pictures may
+// be shown until the frame after it has come.
+type Frame struct {
+	Subject  Subject
+	Settings trace.Settings
+	Media    []*gems.Material
+	Result   *trace.Result
+	Row      [Rows]trace.Quantity
+	Fields   [Rows][][]float32   // by row and column, as trace.Map.Field gives them
+	Pictures [Rows][]*image.RGBA // by row and column; clear outside the outline
+	Final    bool                // the run reached its goal
+}
+
+// tracing is trace.Run or, in tests, what stands in for it.
+type tracing func(context.Context, trace.Scene, trace.Settings, func(*trace.Result)) (*trace.Result, error)
+
+// request is one stone, how to get it and how to look at it.
+type request struct {
+	solve    func() (Subject, error)
+	settings trace.Settings
+	media    []*gems.Material
+	lastGood bool // not the latest plan, which cannot be had, but the stone before it
+}
+
+// run is one run under way. Its fields belong to the window's goroutine, but for
+// pending, which hands frames over.
+type run struct {
+	number   int
+	request  request
+	cancel   context.CancelFunc
+	finished chan struct{}
+	answered bool // its first frame has arrived
+	share    float64
+	pending  atomic.Pointer[Frame]
+}
+
+const quantityCount = int(trace.Unresolved) + 1
+
+// DefaultMapPixels is the edge of a map before the window's size is known.
+const DefaultMapPixels = 300
+
+// NewLook returns the state before anything was shown: air, water and oil, light
+// return over leakage, face-up, a head of 10 degrees.
+//
+// do hands work to the window's goroutine, in order, without waiting for it;
+// onChange is called there.
+func NewLook(do func(func()), onChange func(Change)) (*Look, error) {
+	l := &Look{
+		Row:      [Rows]trace.Quantity{trace.Returned, trace.Leaked},
+		do:       do,
+		onChange: onChange,
+		trace:    trace.Run,
+		settings: trace.Settings{
+			Head:    10 * facets.Degree,
+			Pixels:  DefaultMapPixels,
+			Seed:    1,
+			Workers: max(1, runtime.GOMAXPROCS(0)-1), // one core stays with the window
+		},
+	}
+	for _, key := range []string{"air", "water", "oil"} {
+		m, err := gems.Find(key)
+		if err != nil {
+			return nil, err
+		}
+		l.Media = append(l.Media, m)
+	}
+	for q := range l.maps {
+		l.maps[q] = colourMap(trace.Quantity(q))
+	}
+	return l, nil
+}
+
+// colourMap returns the colours of a quantity: one map for light that serves the
+// viewer, another for light that is lost to them.
+func colourMap(q trace.Quantity) *picture.ColourMap {
+	if q == trace.Returned || q == trace.Surface {
+		return picture.Cividis()
+	}
+	return picture.Cubehelix()
+}
+
+// ColourMap returns the colours in which a row is painted.
+func (l *Look) ColourMap(row int) *picture.ColourMap { return l.maps[l.Row[row]] }
+
+// Show asks for the maps of another stone. solve is called once or more often, on
+// another goroutine.
+func (l *Look) Show(solve func() (Subject, error)) {
+	l.latest = request{solve: solve, settings: l.settings, media: l.Media}
+	l.restart()
+}
+
+// Settings returns how the stone is looked at.
+func (l *Look) Settings() trace.Settings { return l.settings }
+
+// Adjust changes how the stone is looked at and traces anew if that is a change.
+func (l *Look) Adjust(change func(*trace.Settings)) {
+	before := l.settings
+	change(&l.settings)
+	if l.settings == before {
+		return
+	}
+	l.latest.settings = l.settings
+	l.restart()
+}
+
+// SetMedium puts another surrounding into a column and traces anew.
+func (l *Look) SetMedium(column int, m *gems.Material) {
+	media := append([]*gems.Material(nil), l.Media...)
+	media[column] = m
+	l.Media, l.latest.media = media, media
+	l.restart()
+}
+
+// SetRow puts another quantity into a row. What is known is painted at once.
+func (l *Look) SetRow(row int, q trace.Quantity) {
+	if l.Row[row] == q {
+		return
+	}
+	l.Row[row] = q
+	if l.Frame != nil {
+		l.show(l.repaint(l.Frame))
+	}
+	l.onChange(MapsChanged)
+}
+
+// Stop ends the run under way; what was found stays.
+func (l *Look) Stop() {
+	l.stopped, l.waiting = true, false
+	if l.running != nil {
+		l.running.cancel()
+	}
+	l.onChange(StateChanged)
+}
+
+// Resume traces again what Stop ended.
+func (l *Look) Resume() { l.restart() }
+
+// Close ends the run under way and waits until all of its goroutines have
+// returned. It may be called on the window's goroutine: runs never wait for that.
+func (l *Look) Close() {
+	l.stopped, l.waiting = true, false
+	if l.running != nil {
+		l.running.cancel()
+		<-l.running.finished
+	}
+}
+
+func (l *Look) restart() {
+	if l.latest.solve == nil {
+		return
+	}
+	l.stopped, l.waiting = false, true
+	l.advance()
+	l.onChange(StateChanged)
+}
+
+// advance starts what is waiting, or makes room for it: a run that has given its
+// coarse answer is cancelled, one that has not is let come to it, so that the maps
+// follow a moving slider however fast it moves.
+func (l *Look) advance() {
+	switch {
+	case !l.waiting:
+	case l.running == nil:
+		l.waiting = false
+		l.start(l.latest)
+	case l.running.answered:
+		l.running.cancel()
+	}
+}
+
+func (l *Look) start(q request) {
+	ctx, cancel := context.WithCancel(context.Background())
+	l.number++
+	r := &run{number: l.number, request: q, cancel: cancel, finished: make(chan struct{})}
+	l.running = r
+	row := l.Row
+	go func() {
+		defer close(r.finished)
+		err := l.trail(ctx, r, row)
+		l.do(func() { l.ended(r, err) })
+	}()
+}
+
+// solveError marks an error that came from the plan, not from the tracing.
+type solveError struct{ error }
+
+func (e solveError) Unwrap() error { return e.error }
+
+// trail solves and traces, on a goroutine of its own, and hands over what it finds.
+func (l *Look) trail(ctx context.Context, r *run, row [Rows]trace.Quantity) error {
+	subject, err := r.request.solve()
+	if err != nil {
+		return solveError{err}
+	}
+	l.do(func() { l.solved(r, subject) })
+	scene := trace.Scene{Stone: subject.Stone, Material: subject.Material, Media: r.request.media}
+	pace := newPace()
+	hand := func(result *trace.Result, final bool) {
+		f := l.paint(Frame{Subject: subject, Settings: r.request.settings, Media: r.request.media,
+			Result: result, Row: row, Final: final})
+		if late := r.pending.Swap(f); late != nil {
+			l.buffers.giveBack(late) // nobody has seen it; the new one takes its turn
+			return
+		}
+		l.do(func() { l.arrived(r, r.pending.Swap(nil)) })
+	}
+	result, err := l.trace(ctx, scene, r.request.settings, func(result *trace.Result) {
+		if ctx.Err() == nil && pace.due(time.Now()) {
+			hand(result, false)
+		}
+	})
+	if err == nil {
+		hand(result, true)
+	}
+	return err
+}
+
+// pace spaces the frames of a run: the first at once, then ten a second, and four
+// once two seconds have gone and little changes any more.
+type pace struct{ began, last time.Time }
+
+func newPace() *pace { return &pace{} }
+
+func (p *pace) due(now time.Time) bool {
+	if p.began.IsZero() {
+		p.began, p.last = now, now
+		return true
+	}
+	wait := 100 * time.Millisecond
+	if now.Sub(p.began) > 2*time.Second {
+		wait = 250 * time.Millisecond
+	}
+	if now.Sub(p.last) < wait {
+		return false
+	}
+	p.last = now
+	return true
+}
+
+// paint fills in a frame's fields and pictures. It may run on any goroutine.
+func (l *Look) paint(f Frame) *Frame {
+	columns := f.Result.Columns
+	f.Pictures = l.buffers.take(len(columns), f.Settings.Pixels)
+	for i, q := range f.Row {
+		f.Fields[i] = make([][]float32, len(columns))
+		for j := range columns {
+			m := columns[j].Map
+			f.Fields[i][j] = m.Field(q)
+			dst := f.Pictures[i][j]
+			picture.Paint(dst, f.Fields[i][j], m.Pixels, l.maps[q])
+			clearOutside(dst, f.Fields[i][j])
+		}
+	}
+	return &f
+}
+
+// repaint makes the frame anew for the quantities that are wanted now.
+func (l *Look) repaint(f *Frame) *Frame {
+	again := *f
+	again.Row = l.Row
+	return l.paint(again)
+}
+
+// clearOutside lets the window's ground show around the stone, in any theme.
+func clearOutside(dst *image.RGBA, field []float32) {
+	for i, v := range field {
+		if v != v { // NaN
+			clear(dst.Pix[4*i : 4*i+4])
+		}
+	}
+}
+
+// solved takes a stone that could be had.
+func (l *Look) solved(r *run, subject Subject) {
+	if l.stale(r) {
+		return
+	}
+	if r.request.lastGood {
+		return
+	}
+	l.Subject, l.Trouble = subject, nil
+	l.onChange(StoneChanged)
+}
+
+// arrived takes a frame, unless its run is no longer the one that counts.
+func (l *Look) arrived(r *run, f *Frame) {
+	if f == nil {
+		return
+	}
+	if l.stale(r) || l.stopped && !f.Final {
+		l.buffers.giveBack(f)
+		return
+	}
+	r.answered, r.share = true, f.Result.Done
+	if f.Row != l.Row { // another quantity was chosen meanwhile
+		l.buffers.giveBack(f)
+		f = l.repaint(f)
+	}
+	l.show(f)
+	l.onChange(MapsChanged)
+	l.advance()
+}
+
+func (l *Look) show(f *Frame) {
+	if l.Frame != nil {
+		l.buffers.giveBack(l.Frame)
+	}
+	l.Frame = f
+}
+
+// ended takes the end of a run, however it came.
+func (l *Look) ended(r *run, err error) {
+	if l.stale(r) {
+		return
+	}
+	r.cancel()
+	l.running = nil
+	var unsolved solveError
+	switch {
+	case errors.As(err, &unsolved):
+		l.Trouble = unsolved.error
+		l.onChange(StoneChanged)
+		l.finishLastGood(r)
+	case err != nil && !errors.Is(err, context.Canceled):
+		l.Trouble = err
+		l.onChange(StoneChanged)
+	}
+	l.advance()
+	l.onChange(StateChanged)
+}
+
+// finishLastGood goes on with the last good stone, whose maps may have been left
+// coarse, or be of other settings, when the plan that cannot be solved came.
+func (l *Look) finishLastGood(failed *run) {
+	good, q := l.Subject, failed.request
+	if l.waiting || good.Stone == nil || l.Frame != nil && l.Frame.Final && l.Frame.Subject == good &&
+		l.Frame.Settings == q.settings && slices.Equal(l.Frame.Media, q.media) {
+		return
+	}
+	q.solve = func() (Subject, error) { return good, nil }
+	q.lastGood = true
+	l.start(q)
+}
+
+func (l *Look) stale(r *run) bool { return l.running == nil || r.number != l.running.number }
+
+// Progress is how far the maps have come.
+type Progress struct {
+	Active  bool // a run is under way
+	Stopped bool // by the user, before the goal
+	Share   float64
+}
+
+// Progress returns how far the maps have come.
+func (l *Look) Progress() Progress {
+	p := Progress{Active: l.running != nil || l.waiting, Stopped: l.stopped && (l.Frame == nil || !l.Frame.Final)}
+	switch {
+	case l.running != nil:
+		p.Share = l.running.share
+	case l.Frame != nil:
+		p.Share = l.Frame.Result.Done
+	}
+	if p.Stopped {
+		p.Active = false
+	}
+	return p
+}
+
+// Point asks the maps at a place of the picture, in shares from its top left.
+func (l *Look) Point(x, y float64) {
+	l.Pointer = Pointer{true, min(1, max(0, x)), min(1, max(0, y))}
+	l.onChange(PointerChanged)
+}
+
+// PointAway ends asking.
+func (l *Look) PointAway() {
+	l.Pointer = Pointer{}
+	l.onChange(PointerChanged)
+}
