@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"image"
 	"image/draw"
+	"strings"
 
 	"golang.org/x/image/font"
 	"golang.org/x/image/font/gofont/gobold"
@@ -25,7 +26,7 @@ type letters struct {
 	body, title font.Face
 }
 
-func newLetters(dst draw.Image) (*letters, error) {
+func newLetters() (*letters, error) {
 	body, err := face(goregular.TTF, bodySize)
 	if err != nil {
 		return nil, err
@@ -34,7 +35,7 @@ func newLetters(dst draw.Image) (*letters, error) {
 	if err != nil {
 		return nil, err
 	}
-	return &letters{dst: dst, body: body, title: title}, nil
+	return &letters{body: body, title: title}, nil
 }
 
 func face(ttf []byte, size float64) (font.Face, error) {
@@ -78,4 +79,26 @@ func cut(f font.Face, s string, width int) string {
 		runes = runes[:len(runes)-1]
 	}
 	return string(runes) + "…"
+}
+
+// wrap breaks s between words into lines of at most width pixels. A word that is
+// wider is cut.
+func wrap(f font.Face, s string, width int) []string {
+	var lines []string
+	line := ""
+	for word := range strings.FieldsSeq(s) {
+		longer := strings.TrimLeft(line+" "+word, " ")
+		if line != "" && font.MeasureString(f, longer).Ceil() > width {
+			lines, line = append(lines, line), word
+			continue
+		}
+		line = longer
+	}
+	if line != "" {
+		lines = append(lines, line)
+	}
+	for i := range lines {
+		lines[i] = cut(f, lines[i], width)
+	}
+	return lines
 }

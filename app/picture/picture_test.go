@@ -9,7 +9,10 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"strings"
 	"testing"
+
+	"golang.org/x/image/font"
 )
 
 // lightness returns the CIE 1976 L* of an sRGB colour, 0 to 100. Sources: CIE 15:2004,
@@ -274,5 +277,29 @@ func TestWritePNG(t *testing.T) {
 	}
 	if err := WritePNG(filepath.Join(dir, "absent", "map.png"), want); !errors.Is(err, fs.ErrNotExist) {
 		t.Errorf("a missing folder: %v", err)
+	}
+}
+
+func TestWrap(t *testing.T) {
+	l, err := newLetters()
+	if err != nil {
+		t.Fatal(err)
+	}
+	const width = 120
+	text := "a stone that is seen from above in even light, withaverylongwordthatfitsnowhere between"
+	lines := wrap(l.body, text, width)
+	if len(lines) < 4 {
+		t.Errorf("wrapped into %d lines only: %q", len(lines), lines)
+	}
+	for _, line := range lines {
+		if got := font.MeasureString(l.body, line).Ceil(); got > width {
+			t.Errorf("%q is %d pixels wide, at most %d allowed", line, got, width)
+		}
+	}
+	if got := strings.Join(wrap(l.body, text, 10000), " "); got != text {
+		t.Errorf("text that fits was changed to %q", got)
+	}
+	if got := wrap(l.body, "  ", width); len(got) != 0 {
+		t.Errorf("blanks became %q", got)
 	}
 }

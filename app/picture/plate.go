@@ -12,7 +12,7 @@ type Plate struct {
 	Title   string    // the quantity: "Light return"
 	Medium  string    // the surrounding: "in water, 1.333"
 	Legend  string    // what the scale counts: "share of the viewing ray"
-	Lines   []string  // numbers under the map
+	Lines   []string  // numbers under the map; long ones are wrapped
 	Field   []float32 // Pixels × Pixels values from 0 to 1, NaN outside the outline
 	Pixels  int       // of each edge of the field
 	Colours *ColourMap
@@ -54,22 +54,31 @@ func Single(p Plate) (*image.RGBA, error) {
 	}
 	edge := p.edge()
 	const head = margin + titleSize + lineStep + 14
-	dst := blank(2*margin+edge+scaleRoom, head+edge+12+lineStep*(len(p.Lines)+1)+margin)
-	l, err := newLetters(dst)
+	width := edge + scaleRoom
+	l, err := newLetters()
 	if err != nil {
 		return nil, err
 	}
-	width := dst.Rect.Dx() - 2*margin
+	var lines []string
+	for _, line := range p.Lines {
+		lines = append(lines, wrap(l.body, line, width)...)
+	}
+	legend := wrap(l.body, p.Legend, width)
+	dst := blank(2*margin+width, head+edge+12+lineStep*(len(lines)+len(legend))+margin)
+	l.dst = dst
 	l.write(l.title, margin, margin+titleSize-3, left, ink, cut(l.title, p.Title, width))
 	l.write(l.body, margin, margin+titleSize+lineStep-2, left, ink, cut(l.body, p.Medium, width))
 	p.paint(dst, image.Pt(margin, head))
 	l.scale(p.Colours, margin+edge+14, head, edge)
 	y := head + edge + 12 + bodySize
-	for _, line := range p.Lines {
-		l.write(l.body, margin, y, left, ink, cut(l.body, line, width))
+	for i, line := range append(lines, legend...) {
+		level := uint8(ink)
+		if i >= len(lines) {
+			level = pale
+		}
+		l.write(l.body, margin, y, left, level, line)
 		y += lineStep
 	}
-	l.write(l.body, margin, y, left, pale, cut(l.body, p.Legend, width))
 	return dst, nil
 }
 

@@ -54,10 +54,11 @@ func (s *Sheet) Draw() (*image.RGBA, error) {
 	width := 2*margin + columns*(edge+gap) + scaleRoom
 	height := head + lineStep + len(s.Rows)*rowStep + lineStep*(tallest+2) + margin
 	dst := blank(width, height)
-	l, err := newLetters(dst)
+	l, err := newLetters()
 	if err != nil {
 		return nil, err
 	}
+	l.dst = dst
 
 	text := width - 2*margin
 	l.write(l.title, margin, margin+titleSize-3, left, ink, cut(l.title, s.Title, text))
