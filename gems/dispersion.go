@@ -11,6 +11,7 @@ const (
 	Sellmeier             // n² = 1 + Σ A λ²/(λ² − B²); A, B, A, B, …
 	Resonance             // n² = a + d λ² + Σ b λ²/(λ² − c); a, d, b, c, b, c, …
 	Pole                  // n² = a + d λ² + Σ b/(λ² − c); a, d, b, c, b, c, …
+	Laurent               // n² = Σ c λᵖ; c, p, c, p, …
 	Water                 // IAPWS R9-97; temperature in K, density in kg/m³
 	Points                // measured points, joined by straight lines over 1/λ²; nm, n, nm, n, …
 )
@@ -23,6 +24,7 @@ func (k Kind) String() string {
 		"n² = 1 + Σ A λ²/(λ² − B²)",
 		"n² = a + d λ² + Σ b λ²/(λ² − c)",
 		"n² = a + d λ² + Σ b/(λ² − c)",
+		"n² = Σ c λᵖ",
 		"IAPWS R9-97",
 		"measured points",
 	}[k]
@@ -43,7 +45,8 @@ type Dispersion struct {
 	Fitted       bool       // fitted here, through fewer published numbers
 	Continued    bool       // carried on to 400 and 700 nm where the published range ends inside; those parts count as fitted
 	Vacuum       bool       // the formula gives the index against vacuum
-	Source       Source
+	Source       Source     // of formula and coefficients; for a fit, of the index
+	SpreadSource Source     // for a fit, of the dispersion that goes with the index
 }
 
 // usable returns the range over which at may be called.
@@ -101,6 +104,8 @@ func (d *Dispersion) formula(w Wavelength) float64 {
 		return resonance(c, w)
 	case Pole:
 		return pole(c, w)
+	case Laurent:
+		return laurent(c, w)
 	case Water:
 		return waterAgainstVacuum(c[1], c[0], w)
 	default:
@@ -110,14 +115,29 @@ func (d *Dispersion) formula(w Wavelength) float64 {
 
 // fitted returns two Cauchy terms through the index at the sodium D line and the
 // dispersion from B (686.7 nm) to G (430.8 nm), the two numbers that gem tables print.
-func fitted(nD, bToG float64, source Source) Dispersion {
+func fitted(nD, bToG float64, indexSource, spreadSource Source) Dispersion {
 	c1 := bToG / (LineG.inverseSquare() - LineB.inverseSquare())
+	return twoTerms(nD, c1, indexSource, spreadSource)
+}
+
+// fittedAbbe returns two Cauchy terms through the index at the sodium D line and the
+// Abbe number (n_d − 1)/(n_F − n_C), which chemists print.
+func fittedAbbe(nD, abbe float64, indexSource, spreadSource Source) Dispersion {
+	span := LineF.inverseSquare() - LineC.inverseSquare()
+	shift := Lined.inverseSquare() - LineD.inverseSquare() // n_d = nD + c1·shift
+	c1 := (nD - 1) / (abbe*span - shift)
+	return twoTerms(nD, c1, indexSource, spreadSource)
+}
+
+// twoTerms returns n = c0 + c1/λ² through nD at the sodium D line, over the visible range.
+func twoTerms(nD, c1 float64, indexSource, spreadSource Source) Dispersion {
 	return Dispersion{
 		Kind:         Cauchy,
 		Coefficients: []float64{nD - c1*LineD.inverseSquare(), c1},
 		Lo:           visibleLo,
 		Hi:           visibleHi,
 		Fitted:       true,
-		Source:       source,
+		Source:       indexSource,
+		SpreadSource: spreadSource,
 	}
 }

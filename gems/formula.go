@@ -40,6 +40,15 @@ func pole(c []float64, w Wavelength) float64 {
 	return math.Sqrt(n2)
 }
 
+// laurent returns n of n² = Σ c λᵖ.
+func laurent(c []float64, w Wavelength) float64 {
+	l, n2 := w.micrometres(), 0.0
+	for i := 0; i+1 < len(c); i += 2 {
+		n2 += c[i] * math.Pow(l, c[i+1])
+	}
+	return math.Sqrt(n2)
+}
+
 // points returns n between measured points, straight over 1/λ² between neighbours:
 // over that variable the index of a glass is nearly a straight line.
 func points(c []float64, w Wavelength) float64 {

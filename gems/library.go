@@ -123,7 +123,13 @@ func Find(key string) (*Material, error) { return Standard().Find(key) }
 // and materials are fresh.
 func Stones() []*Material {
 	return slices.Concat(
+		others(),
 		oxides(),
+		tectosilicates(),
+		silicates(),
+		garnets(),
+		synthetics(),
+		glasses(),
 	)
 }
 
@@ -132,5 +138,6 @@ func Stones() []*Material {
 func Surroundings() []*Material {
 	return slices.Concat(
 		liquids(),
+		coatings(),
 	)
 }

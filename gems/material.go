@@ -30,19 +30,19 @@ type Material struct {
 	// ascending order for a biaxial one.
 	Rays []Dispersion
 
-	Density       float64 // g/cm³, the usual value; 0 if not known
-	DensityRange  Span    // g/cm³, as found in nature or in trade
-	Hardness      Span    // Mohs; zero for a liquid, a gas or where not known
-	Cleavage      string  // in words; empty where the sources name none
-	Toughness     string  // how it bears knocks, pressure and heat, in words
-	Polishing     string  // a remark on polishing, only where there is a source
-	Cautions      []string
-	Absorption    *Absorption // body colour; nil means as if colourless
-	Notes         string      // how the numbers were chosen, where sources disagree
-	DensitySource Source
-	WearSource    Source // of hardness, cleavage and toughness
-	CautionSource Source
-	PolishSource  Source
+	Density      float64     // g/cm³, the usual value; 0 if not known
+	DensityRange Span        // g/cm³, as found in nature or in trade
+	Hardness     Span        // Mohs; zero for a liquid, a gas or where not known
+	Cleavage     string      // in words; empty where the sources name none
+	Toughness    string      // how it bears knocks, pressure and heat, in words
+	Cautions     []string    // what the material itself brings, in words for the bench
+	Absorption   *Absorption // body colour; nil means as if colourless
+	Notes        string      // how the numbers were chosen, where sources disagree
+
+	DensitySource   Source
+	WearSource      Source // of hardness and cleavage
+	ToughnessSource Source
+	CautionSource   Source
 }
 
 // Span is a range of values, Lo ≤ Hi. The zero Span means not known.
