@@ -1,0 +1,390 @@
+package facets
+
+import (
+	"bytes"
+	"errors"
+	"fmt"
+	"slices"
+	"strconv"
+	"strings"
+
+	"github.com/pelletier/go-toml/v2"
+	"github.com/pelletier/go-toml/v2/unstable"
+)
+
+// The text of a plan file, cut into blocks. The decoder of the TOML package
+// stops at the first wrong type and keeps neither order nor comments, so the
+// file is checked by the decoder and then read from the package's syntax tree,
+// which has the place of everything. That tree's package calls itself unstable;
+// go.mod pins the version.
+
+// layout is a plan's text: the keys at the head, then one block a table.
+type layout struct {
+	newline string
+	bom     bool
+	head    *block
+	before  []*block // tables of the plan itself that stand before the first tier
+	after   []*block // and after it
+}
+
+// block is one table of a plan file with the comments above it.
+type block struct {
+	header  []string // the table's name; empty for the head
+	list    bool     // [[name]]
+	line    int
+	text    string // from the comments above to the next block
+	lead    int    // length of the comments above the header
+	odd     bool   // has dotted keys or tables of its own: not mended in place
+	entries []entry
+	subs    []*block
+	wrote   []pair // what canonical writing gives for the values as read
+}
+
+// entry is a key with its value.
+type entry struct {
+	key   string
+	line  int
+	value item
+	// Places in the block's text: of the value, and of the whole lines.
+	from, to         int
+	lineFrom, lineTo int
+}
+
+// item is a value with its text as written.
+type item struct {
+	kind    unstable.Kind
+	written string
+	text    string // decoded, of strings and booleans
+	list    []item
+	table   []entry
+	line    int
+}
+
+// splitBlocks parses a TOML text into its blocks. The error is a *Fault.
+func splitBlocks(data []byte, file string) ([]*block, error) {
+	var whole map[string]any
+	if err := toml.Unmarshal(data, &whole); err != nil {
+		f := &Fault{File: file, Why: "this is not TOML", Remedy: "see the sample plans for how one is written"}
+		var de *toml.DecodeError
+		if errors.As(err, &de) {
+			f.Line, _ = de.Position()
+			f.Got = lineOf(data, f.Line)
+			f.Field = "line"
+			f.Why = "this is not TOML: " + strings.TrimPrefix(de.Error(), "toml: ")
+			f.Remedy = "correct this line"
+		}
+		return nil, f
+	}
+	p := unstable.Parser{}
+	p.Reset(data)
+	blocks := []*block{{line: 1}}
+	starts := []int{0} // of each block's header
+	lines := newLines(data)
+	end := 0 // of the last expression
+	for p.NextExpression() {
+		e := p.Expression()
+		switch e.Kind {
+		case unstable.KeyValue:
+			b := blocks[len(blocks)-1]
+			from := int(e.Raw.Offset)
+			end = from + int(e.Raw.Length)
+			en := readEntry(&p, e, lines)
+			en.lineFrom, en.lineTo = lines.start(from), lines.end(end)
+			en.to = end
+			keyEnd := 0
+			n := 0
+			for it := e.Key(); it.Next(); n++ {
+				keyEnd = int(it.Node().Raw.Offset + it.Node().Raw.Length)
+			}
+			b.odd = b.odd || n > 1
+			eq := keyEnd + bytes.IndexByte(data[keyEnd:], '=') + 1
+			for eq < end && (data[eq] == ' ' || data[eq] == '\t') {
+				eq++
+			}
+			en.from = eq
+			en.value.written = string(data[eq:end])
+			b.entries = append(b.entries, en)
+		case unstable.Table, unstable.ArrayTable:
+			var name []string
+			from := -1
+			for it := e.Key(); it.Next(); {
+				name = append(name, string(it.Node().Data))
+				if from < 0 {
+					from = int(it.Node().Raw.Offset)
+				}
+				end = int(it.Node().Raw.Offset + it.Node().Raw.Length)
+			}
+			blocks = append(blocks, &block{header: name, list: e.Kind == unstable.ArrayTable, line: lines.number(from)})
+			starts = append(starts, lines.start(from))
+		}
+	}
+	if err := p.Error(); err != nil {
+		return nil, &Fault{File: file, Why: "this is not TOML: " + err.Error()}
+	}
+	// The comments right above a header belong to its block.
+	tops := slices.Clone(starts)
+	for i := 1; i < len(blocks); i++ {
+		floor := starts[i-1]
+		if es := blocks[i-1].entries; len(es) > 0 {
+			floor = es[len(es)-1].lineTo
+		} else if i > 1 {
+			floor = lines.end(starts[i-1])
+		}
+		for tops[i] > floor {
+			above := lines.start(tops[i] - 1)
+			if !bytes.HasPrefix(bytes.TrimSpace(data[above:tops[i]]), []byte("#")) {
+				break
+			}
+			tops[i] = above
+		}
+	}
+	for i, b := range blocks {
+		to := len(data)
+		if i+1 < len(blocks) {
+			to = tops[i+1]
+		}
+		b.text, b.lead = string(data[tops[i]:to]), starts[i]-tops[i]
+		for j := range b.entries {
+			e := &b.entries[j]
+			e.from, e.to = e.from-tops[i], e.to-tops[i]
+			e.lineFrom, e.lineTo = e.lineFrom-tops[i], e.lineTo-tops[i]
+		}
+	}
+	return blocks, nil
+}
+
+// readEntry copies a key and its value out of the parser.
+func readEntry(p *unstable.Parser, e *unstable.Node, lines *lines) entry {
+	var key []string
+	at := 0
+	for it := e.Key(); it.Next(); {
+		key = append(key, string(it.Node().Data))
+		if len(key) == 1 {
+			at = int(it.Node().Raw.Offset)
+		}
+	}
+	line := lines.number(at)
+	return entry{key: strings.Join(key, "."), line: line, value: readItem(p, e.Value(), line, lines)}
+}
+
+func readItem(p *unstable.Parser, n *unstable.Node, line int, lines *lines) item {
+	it := item{kind: n.Kind, line: line}
+	if n.Raw.Length > 0 {
+		it.line = lines.number(int(n.Raw.Offset))
+	}
+	switch n.Kind {
+	case unstable.Array:
+		for c := n.Children(); c.Next(); {
+			it.list = append(it.list, readItem(p, c.Node(), it.line, lines))
+		}
+		it.written = "[" + joinWritten(it.list) + "]"
+	case unstable.InlineTable:
+		for c := n.Children(); c.Next(); {
+			it.table = append(it.table, readEntry(p, c.Node(), lines))
+		}
+		it.written = "{...}"
+	default:
+		it.text = string(n.Data)
+		it.written = it.text
+	}
+	return it
+}
+
+func joinWritten(list []item) string {
+	words := make([]string, len(list))
+	for i, v := range list {
+		words[i] = v.written
+	}
+	return strings.Join(words, ", ")
+}
+
+// number returns the value of a TOML integer or float.
+func (it *item) number() (float64, bool) {
+	if it.kind != unstable.Integer && it.kind != unstable.Float {
+		return 0, false
+	}
+	s := strings.ReplaceAll(it.text, "_", "")
+	if it.kind == unstable.Integer {
+		v, err := strconv.ParseInt(strings.TrimPrefix(s, "+"), 0, 64)
+		if err != nil { // TOML allows no octal by a leading zero, so 0 finds 0x, 0o and 0b only
+			return 0, false
+		}
+		return float64(v), true
+	}
+	v, err := strconv.ParseFloat(s, 64)
+	return v, err == nil
+}
+
+// lines finds line numbers by place.
+type lines struct {
+	data   []byte
+	starts []int
+}
+
+func newLines(data []byte) *lines {
+	l := &lines{data: data, starts: []int{0}}
+	for i, c := range data {
+		if c == '\n' {
+			l.starts = append(l.starts, i+1)
+		}
+	}
+	return l
+}
+
+// number returns the 1-based line of a place.
+func (l *lines) number(at int) int {
+	n, found := slices.BinarySearch(l.starts, at)
+	if found {
+		return n + 1
+	}
+	return n
+}
+
+// start returns where the line of a place begins.
+func (l *lines) start(at int) int { return l.starts[l.number(at)-1] }
+
+// end returns where the line after that of a place begins.
+func (l *lines) end(at int) int {
+	if n := l.number(at); n < len(l.starts) {
+		return l.starts[n]
+	}
+	return len(l.data)
+}
+
+// lineOf returns a line of the text, shortened, for a message.
+func lineOf(data []byte, number int) string {
+	all := bytes.Split(data, []byte("\n"))
+	if number < 1 || number > len(all) {
+		return ""
+	}
+	return shorten(strings.TrimSpace(string(all[number-1])))
+}
+
+// shorten cuts a piece of the user's text to what a message can hold, and
+// makes it printable.
+func shorten(s string) string {
+	const most = 60
+	r := []rune(strings.ToValidUTF8(s, "?"))
+	if len(r) > most {
+		r = append(r[:most], []rune("...")...)
+	}
+	return strings.Map(func(c rune) rune {
+		if c < ' ' || c == 0x7f {
+			return ' '
+		}
+		return c
+	}, string(r))
+}
+
+// pair is a key and its value as TOML writes it.
+type pair struct{ key, text string }
+
+// render returns the block with the wanted values. What did not change stays
+// as the user wrote it, comments and all.
+func (b *block) render(header string, want []pair, newline string) string {
+	if b != nil && slices.Equal(b.wrote, want) {
+		text := b.text
+		for _, sub := range b.subs {
+			text += sub.text
+		}
+		return text
+	}
+	if b == nil || b.odd || len(b.subs) > 0 {
+		return canonical(b, header, want, newline)
+	}
+	old := map[string]string{}
+	for _, w := range b.wrote {
+		old[w.key] = w.text
+	}
+	wanted := map[string]string{}
+	for _, w := range want {
+		wanted[w.key] = w.text
+	}
+	var out strings.Builder
+	at, seen := 0, map[string]bool{}
+	place := b.lead // where new keys go: after the last key, or the header
+	if n := strings.IndexByte(b.text[b.lead:], '\n'); len(b.header) > 0 && n >= 0 {
+		place += n + 1
+	} else if len(b.header) > 0 {
+		place = len(b.text)
+	}
+	type insertion struct {
+		at   int
+		text string
+	}
+	for _, e := range b.entries {
+		seen[e.key] = true
+		place = max(place, e.lineTo)
+		text, ok := wanted[e.key]
+		switch {
+		case !ok:
+			out.WriteString(b.text[at:e.lineFrom])
+			at = e.lineTo
+		case text != old[e.key]:
+			out.WriteString(b.text[at:e.from] + strings.ReplaceAll(text, "\n", newline))
+			at = e.to
+		}
+	}
+	if place > at {
+		out.WriteString(b.text[at:place])
+		at = place
+	}
+	for _, w := range want {
+		if !seen[w.key] {
+			if s := out.String(); s != "" && !strings.HasSuffix(s, "\n") {
+				out.WriteString(newline)
+			}
+			out.WriteString(w.key + " = " + strings.ReplaceAll(w.text, "\n", newline) + newline)
+		}
+	}
+	out.WriteString(b.text[at:])
+	return out.String()
+}
+
+// canonical writes a block afresh, keeping the comments above it.
+func canonical(b *block, header string, want []pair, newline string) string {
+	var out strings.Builder
+	if b != nil {
+		out.WriteString(b.text[:b.lead])
+	}
+	if header != "" {
+		out.WriteString(header + newline)
+	}
+	for _, w := range want {
+		out.WriteString(w.key + " = " + strings.ReplaceAll(w.text, "\n", newline) + newline)
+	}
+	return out.String()
+}
+
+// quote writes a string as TOML: on one line, or on several where it has
+// several.
+func quote(s string) string {
+	var b strings.Builder
+	many := strings.Contains(s, "\n")
+	if many {
+		b.WriteString("\"\"\"\n")
+	} else {
+		b.WriteByte('"')
+	}
+	for _, c := range s {
+		switch {
+		case c == '"' || c == '\\':
+			b.WriteByte('\\')
+			b.WriteRune(c)
+		case c == '\n':
+			b.WriteByte('\n')
+		case c == '\t':
+			b.WriteString("\\t")
+		case c < ' ' || c == 0x7f:
+			fmt.Fprintf(&b, "\\u%04X", c)
+		default:
+			b.WriteRune(c)
+		}
+	}
+	if many {
+		b.WriteString("\"\"\"")
+	} else {
+		b.WriteByte('"')
+	}
+	return b.String()
+}
