@@ -52,4 +52,5 @@ type Stone struct {
 	Facets  []Facet
 	Corners []mgl64.Vec3 // mm
 	Edges   []Edge
+	Notes   []string // what must be said wherever the stone is shown, such as a dent that was filled; one sentence each
 }
