@@ -1,0 +1,222 @@
+package model
+
+import (
+	"bytes"
+	"errors"
+	"fmt"
+	"math"
+	"path/filepath"
+	"strings"
+
+	"pavilight/facets"
+	"pavilight/gems"
+)
+
+// Bench is the work under way: the plan with its history, the maps of it, and the
+// rows of tiers between the two.
+type Bench struct {
+	Doc      *Document
+	Look     *Look
+	Selected string // name of the tier picked in the list or on the solid; may be empty
+
+	solve    func(*facets.Plan) (*facets.Stone, error)
+	do       func(func())
+	onChange func()
+	tiers    tierList
+}
+
+// NewBench returns a bench with the plan on it, its maps not yet asked for: see
+// Begin. do hands work to the window's goroutine, in order, without waiting for it;
+// onLook is told of the maps, onPlan of everything else.
+func NewBench(doc *Document, do func(func()), onLook func(Change), onPlan func()) (*Bench, error) {
+	b := &Bench{Doc: doc, do: do, onChange: onPlan, solve: (*facets.Plan).Solve}
+	look, err := NewLook(do, onLook)
+	if err != nil {
+		return nil, err
+	}
+	b.Look = look
+	return b, nil
+}
+
+// Begin asks for the maps of the plan.
+func (b *Bench) Begin() { b.show() }
+
+// show hands the present plan to the maps.
+func (b *Bench) show() {
+	plan := b.Doc.Plan()
+	b.Look.Show(func() (Subject, error) { return b.subject(plan) })
+	b.onChange()
+}
+
+// subject solves a plan and finds its material. It may run on any goroutine.
+func (b *Bench) subject(plan *facets.Plan) (Subject, error) {
+	material, err := MaterialOf(plan.Material)
+	if err != nil {
+		return Subject{}, err
+	}
+	stone, err := b.solve(plan)
+	if err != nil {
+		return Subject{}, err
+	}
+	return Subject{Stone: stone, Material: material}, nil
+}
+
+// MaterialOf returns the material that a plan names or brings along.
+func MaterialOf(ref facets.MaterialRef) (*gems.Material, error) {
+	if ref.Key != "" {
+		return gems.Find(ref.Key)
+	}
+	return gems.Plain(ref.Name, ref.Index, ref.Density)
+}
+
+// Open reads and solves the plan at path on another goroutine and puts it on the
+// bench. If it cannot be had the bench stays as it is. done is told how it went.
+func (b *Bench) Open(path string, done func(error)) {
+	go func() {
+		plan, err := facets.OpenPlan(path)
+		if err == nil {
+			_, err = b.subject(plan)
+		}
+		b.do(func() {
+			if err == nil {
+				if whole, e := filepath.Abs(path); e == nil {
+					path = whole
+				}
+				b.put(NewDocument(plan, path))
+			}
+			done(err)
+		})
+	}()
+}
+
+// OpenText puts a bundled plan on the bench; name is its file's, for messages.
+func (b *Bench) OpenText(text []byte, name string) error {
+	plan, err := facets.ReadPlan(bytes.NewReader(text), name)
+	if err != nil {
+		return err
+	}
+	if _, err := b.subject(plan); err != nil {
+		return err
+	}
+	b.put(NewDocument(plan, ""))
+	return nil
+}
+
+func (b *Bench) put(doc *Document) {
+	b.Doc, b.Selected = doc, ""
+	b.tiers.forget()
+	b.show()
+}
+
+// Save writes the plan to path, as a whole or not at all.
+func (b *Bench) Save(path string) error {
+	err := b.Doc.save(path)
+	b.onChange()
+	return err
+}
+
+// Tiers returns the rows of the list, in cutting order.
+func (b *Bench) Tiers() []TierRow {
+	material, err := MaterialOf(b.Doc.Plan().Material)
+	if err != nil {
+		material = b.Look.Subject.Material
+	}
+	return b.tiers.rows(b.Doc.Plan(), b.Look.Subject.Stone, criticalTicks(material, b.Look.Media))
+}
+
+// SetAngle gives a tier another angle. With merge the step joins the one before if
+// that set the same tier's angle, as the steps of a drag do until Settle.
+func (b *Bench) SetAngle(tier int, angle facets.Angle, merge bool) error {
+	if !(angle >= 0 && angle <= 90*facets.Degree) {
+		return errors.New("a facet's angle goes from 0° for the table to 90° for the girdle")
+	}
+	t := b.Doc.Plan().Tiers[tier]
+	if t.HasAngle && math.Abs((t.Angle-angle).Degrees()) < sameAngle {
+		return nil
+	}
+	key := ""
+	if merge {
+		key = "angle of " + t.Name
+	}
+	b.Doc.Edit("angle of "+t.Name, key, func(p *facets.Plan) {
+		p.Tiers[tier].Angle, p.Tiers[tier].HasAngle = angle, true
+	})
+	b.show()
+	return nil
+}
+
+// sameAngle is the difference in degrees below which two angles are written alike.
+const sameAngle = 5e-7
+
+// SetWidth gives the stone another width in mm.
+func (b *Bench) SetWidth(mm float64) error {
+	const narrowest, widest = 0.1, 1000 // mm; beyond, it is a slip of the pen
+	if !(mm >= narrowest && mm <= widest) {
+		return fmt.Errorf("a stone is from %v to %v mm wide", narrowest, widest)
+	}
+	if mm == b.Doc.Plan().WidthMM {
+		return nil
+	}
+	b.Doc.Edit("width", "", func(p *facets.Plan) { p.WidthMM = mm })
+	b.show()
+	return nil
+}
+
+// SetMaterial makes the stone of another material.
+func (b *Bench) SetMaterial(m *gems.Material) {
+	if b.Doc.Plan().Material.Key == m.Key {
+		return
+	}
+	b.Doc.Edit("material", "", func(p *facets.Plan) { p.Material = facets.MaterialRef{Key: m.Key} })
+	b.tiers.forget()
+	b.show()
+}
+
+// SetMedium puts another surrounding into a column of the maps.
+func (b *Bench) SetMedium(column int, m *gems.Material) {
+	b.tiers.forget()
+	b.Look.SetMedium(column, m)
+	b.onChange()
+}
+
+// Undo takes the last step back.
+func (b *Bench) Undo() {
+	if b.Doc.Undo() {
+		b.show()
+	}
+}
+
+// Redo brings back the step that Undo took.
+func (b *Bench) Redo() {
+	if b.Doc.Redo() {
+		b.show()
+	}
+}
+
+// Select picks a tier, in the list and on the solid.
+func (b *Bench) Select(tier string) {
+	if b.Selected != tier {
+		b.Selected = tier
+		b.onChange()
+	}
+}
+
+// Troubles says why the present plan cannot be shown, one fault a line; empty when
+// it is shown.
+func (b *Bench) Troubles() []string { return InWords(b.Look.Trouble) }
+
+// InWords returns what an error says, one fault a line, nil for none.
+func InWords(err error) []string {
+	if err == nil {
+		return nil
+	}
+	var faults facets.Faults
+	if errors.As(err, &faults) {
+		lines := make([]string, len(faults))
+		for i, f := range faults {
+			lines[i] = f.Error()
+		}
+		return lines
+	}
+	return strings.Split(err.Error(), "\n")
+}

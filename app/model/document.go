@@ -1,0 +1,106 @@
+package model
+
+import (
+	"path/filepath"
+
+	"pavilight/facets"
+)
+
+// Document is a plan that is being worked on, with its history and the file that
+// it belongs to.
+type Document struct {
+	Path string // of its file; empty for a plan that has none yet
+
+	history history[*facets.Plan]
+}
+
+// NewDocument returns a document of the plan as it was read from path, or of a
+// bundled plan, which has no file, for an empty path.
+func NewDocument(plan *facets.Plan, path string) *Document {
+	return &Document{Path: path, history: newHistory(plan, true)}
+}
+
+// recovered returns a document of work that was never saved to path.
+func recovered(plan *facets.Plan, path string) *Document {
+	return &Document{Path: path, history: newHistory(plan, false)}
+}
+
+// Plan returns the present plan. It must not be changed; see Edit.
+func (d *Document) Plan() *facets.Plan { return d.history.present() }
+
+// Edit changes the plan as one step that the Edit menu calls name. Steps that
+// follow each other with the same merge key, such as those of one drag, become
+// one; an empty key never merges.
+func (d *Document) Edit(name, merge string, change func(*facets.Plan)) {
+	plan := d.Plan().Clone()
+	change(plan)
+	d.history.push(name, merge, plan)
+}
+
+// Settle ends a run of steps that become one.
+func (d *Document) Settle() { d.history.settle() }
+
+// Undo takes the last step back, false if there is none.
+func (d *Document) Undo() bool { return d.history.undo() }
+
+// Redo brings the step back that Undo took, false if there is none.
+func (d *Document) Redo() bool { return d.history.redo() }
+
+// UndoName names the step that Undo takes back, false if there is none.
+func (d *Document) UndoName() (string, bool) { return d.history.undoName() }
+
+// RedoName names the step that Redo brings back, false if there is none.
+func (d *Document) RedoName() (string, bool) { return d.history.redoName() }
+
+// Modified reports whether the plan differs from its file.
+func (d *Document) Modified() bool { return d.history.modified() }
+
+// Title names the plan, with a star while it differs from its file.
+func (d *Document) Title() string {
+	name := d.Plan().Name
+	if name == "" && d.Path != "" {
+		name = filepath.Base(d.Path)
+	}
+	if name == "" {
+		name = "unnamed plan"
+	}
+	if d.Modified() {
+		name += "*"
+	}
+	return name
+}
+
+// FileName suggests a name for the plan's file.
+func (d *Document) FileName() string {
+	if d.Path != "" {
+		return filepath.Base(d.Path)
+	}
+	name := []rune{}
+	for _, r := range d.Plan().Name {
+		switch {
+		case r >= 'A' && r <= 'Z':
+			name = append(name, r-'A'+'a')
+		case r >= 'a' && r <= 'z', r >= '0' && r <= '9':
+			name = append(name, r)
+		case len(name) > 0 && name[len(name)-1] != '-':
+			name = append(name, '-')
+		}
+	}
+	for len(name) > 0 && name[len(name)-1] == '-' {
+		name = name[:len(name)-1]
+	}
+	if len(name) == 0 {
+		return "plan.toml"
+	}
+	return string(name) + ".toml"
+}
+
+// save writes the plan to path as a whole or not at all and goes on under that name.
+func (d *Document) save(path string) error {
+	if err := writeWhole(path, d.Plan().Write); err != nil {
+		return err
+	}
+	d.Path = path
+	d.history.markSaved()
+	return nil
+}
