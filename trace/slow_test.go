@@ -4,6 +4,7 @@ import (
 	"math"
 	"math/cmplx"
 	"math/rand/v2"
+	"path/filepath"
 	"testing"
 
 	"github.com/go-gl/mathgl/mgl64"
@@ -139,6 +140,21 @@ func (o *slow) inside(from int, x, d mgl64.Vec3, es []field, depth int) {
 func stones(t testing.TB) map[string]*facets.Stone {
 	t.Helper()
 	all := map[string]*facets.Stone{}
+	files, err := filepath.Glob("../testdata/plans/*.toml")
+	if err != nil || len(files) == 0 {
+		t.Fatalf("no sample plans found: %v", err)
+	}
+	for _, f := range files {
+		p, err := facets.OpenPlan(f)
+		if err != nil {
+			t.Fatal(err)
+		}
+		s, err := p.Solve()
+		if err != nil {
+			t.Fatal(err)
+		}
+		all[filepath.Base(f)] = s
+	}
 	for _, n := range []int{6, 40, 150} {
 		all["random "+string(rune('a'+n%26))] = randomStone(t, n, uint64(n))
 	}
