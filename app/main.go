@@ -1,17 +1,36 @@
+// Pavilight shows where the light in a faceted gemstone goes: a window for people,
+// commands for batches, one engine behind both.
 package main
 
 import (
-	"fyne.io/fyne/v2/app"
-	"fyne.io/fyne/v2/widget"
-	_ "github.com/go-gl/mathgl/mgl64"
-	_ "github.com/pelletier/go-toml/v2"
-	_ "gonum.org/v1/gonum/optimize"
-	_ "gonum.org/v1/gonum/stat/distuv"
+	"context"
+	"os"
+	"os/signal"
+	"syscall"
+
+	"pavilight/app/command"
 )
 
 func main() {
-	a := app.NewWithID("org.pavilight")
-	w := a.NewWindow("x")
-	w.SetContent(widget.NewLabel("x"))
-	w.ShowAndRun()
+	os.Exit(run())
+}
+
+// run carries out the command line and returns the exit status. Ctrl-C stops a
+// command in words; a second one ends the program at once.
+func run() int {
+	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt, syscall.SIGTERM)
+	defer stop()
+	context.AfterFunc(ctx, stop)
+	return command.Main(ctx, os.Args[1:], command.Environment{
+		Stdout:   os.Stdout,
+		Stderr:   os.Stderr,
+		Terminal: isTerminal(os.Stderr),
+		Window:   openWindow,
+	})
+}
+
+// isTerminal reports whether f is a device that shows characters.
+func isTerminal(f *os.File) bool {
+	info, err := f.Stat()
+	return err == nil && info.Mode()&os.ModeCharDevice != 0
 }

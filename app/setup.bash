@@ -29,14 +29,13 @@ agreed() {
 	[[ $answer == [yY]* ]]
 }
 
-# as_root COMMAND... runs it as root.
+# as_root COMMAND... runs it as root, and fails where there is no way to.
 as_root() {
 	if [[ $(id -u) -eq 0 ]]; then
 		"$@"
 	elif command -v sudo >/dev/null; then
 		sudo "$@"
 	else
-		warn "This needs root, and there is no sudo here. As root, run: $*"
 		return 1
 	fi
 }
@@ -50,6 +49,10 @@ install_missing() {
 	[[ ${#missing[@]} -eq 0 ]] && return 0
 	say "Missing on this system: ${missing[*]}"
 	say "To install them: apt-get install ${missing[*]}"
+	if [[ $(id -u) -ne 0 ]] && ! command -v sudo >/dev/null; then
+		warn "That needs root, and there is no sudo here: run it as root first."
+		return 1
+	fi
 	agreed "Install them now?" || return 1
 	as_root env DEBIAN_FRONTEND=noninteractive apt-get -q update >&2 || warn "apt-get update failed; trying with what is known."
 	as_root env DEBIAN_FRONTEND=noninteractive apt-get -q install -y --no-install-recommends "${missing[@]}" >&2

@@ -1,0 +1,331 @@
+package command
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"math"
+	"strconv"
+	"strings"
+	"text/tabwriter"
+
+	"pavilight/facets"
+	"pavilight/gems"
+	"pavilight/trace"
+)
+
+// lookCommand traces a stone and prints its ledgers.
+type lookCommand struct {
+	subjectFlags
+	In          string  `default:"air,water,oil" type:"word" placeholder:"NAMES" help:"What surrounds the stone: names of the material table or plain refractive indices, with commas between (${default})."`
+	Tilt        float64 `type:"number" least:"-89" most:"89" unit:"degrees" placeholder:"DEG" help:"How far the stone is rocked, -89 to 89 degrees (0)."`
+	Turn        float64 `type:"number" least:"-360" most:"360" unit:"degrees" placeholder:"DEG" help:"Toward which azimuth it is rocked, -360 to 360 degrees (0)."`
+	Light       string  `default:"even" type:"word" placeholder:"NAME" help:"The light: even, the same from every upward direction (${default})."`
+	Below       float64 `type:"number" least:"0" most:"1" unit:"(1 is white paper)" placeholder:"L" help:"Luminance of what lies under the stone, 0 to 1; 1 is white paper (0)."`
+	Head        float64 `default:"10" type:"number" least:"0" most:"90" unit:"degrees" placeholder:"DEG" help:"Half-angle of the cone that the viewer's head blocks, 0 to 90 degrees (${default})."`
+	Wavelength  float64 `type:"number" least:"400" most:"700" unit:"nm" placeholder:"NM" help:"One wavelength, 400 to 700 nm; without it the spectrum."`
+	Pixels      int     `default:"300" type:"number" least:"16" most:"2000" unit:"pixels" placeholder:"N" help:"Pixels of a map's edge, 16 to 2000 (${default})."`
+	Samples     int     `type:"number" least:"1" most:"100000" unit:"rays a pixel" placeholder:"N" help:"Stop at N rays a pixel, 1 to 100000, instead of at an error."`
+	Error       float64 `default:"0.0005" type:"number" least:"0.00001" most:"0.1" placeholder:"E" help:"Stop when the standard error of every ledger entry is below E, 0.00001 to 0.1 (${default})."`
+	Seed        uint64  `default:"1" type:"number" placeholder:"N" help:"Seed of the random numbers; the same seed gives the same maps (${default})."`
+	Workers     int     `type:"number" least:"0" most:"1024" unit:"(0 for all cores)" placeholder:"N" help:"How many cores may trace, 0 to 1024; 0 for all (0)."`
+	Unpolarised bool    `help:"Average the two polarisations at every facet, instead of tracking the state of the light."`
+	Out         string  `type:"word" placeholder:"DIR" help:"Write the maps as pictures into this folder."`
+}
+
+// lookResult is what look prints as JSON.
+type lookResult struct {
+	Plan         string       `json:"plan"`
+	Material     string       `json:"material"`
+	BodyColour   string       `json:"body_colour"`
+	WidthMM      float64      `json:"width_mm"`
+	View         lookView     `json:"view"`
+	Light        string       `json:"light"`
+	HeadDeg      float64      `json:"head_deg"`
+	WavelengthNM *float64     `json:"wavelength_nm"` // null for the spectrum
+	Polarisation string       `json:"polarisation"`
+	Media        []lookMedium `json:"media"`
+}
+
+type lookView struct {
+	TiltDeg float64 `json:"tilt_deg"`
+	TurnDeg float64 `json:"turn_deg"`
+}
+
+// lookMedium is one column. The media are traced together, so each one's seconds are
+// those of the whole run.
+type lookMedium struct {
+	Name          string       `json:"name"`
+	Arrangement   string       `json:"arrangement"`
+	IndexMedium   float64      `json:"index_medium"`
+	IndexStone    float64      `json:"index_stone"`
+	CriticalDeg   *float64     `json:"critical_angle_deg"` // null where there is none
+	Ledger        trace.Ledger `json:"ledger"`
+	StandardError trace.Ledger `json:"standard_error"`
+	Lit           trace.Lit    `json:"lit"`
+	From          []float64    `json:"from"`
+	LeakyArea     float64      `json:"leaky_area"`
+	WindowedArea  float64      `json:"windowed_area"`
+	Segments      int64        `json:"segments"`
+	Seconds       float64      `json:"seconds"`
+}
+
+// Run traces the stone and prints what was found.
+func (l *lookCommand) Run(c call) error {
+	if l.Light != "even" {
+		return commandFaultf("--light %s: there is no such light yet; use --light even", l.Light)
+	}
+	media, err := surroundings(l.In)
+	if err != nil {
+		return err
+	}
+	s, err := l.subject(c)
+	if err != nil {
+		return err
+	}
+	if err := s.wantMaterial(); err != nil {
+		return err
+	}
+	settings := trace.Settings{
+		View:       trace.View{Tilt: facets.Angle(l.Tilt) * facets.Degree, Turn: facets.Angle(l.Turn) * facets.Degree},
+		Head:       facets.Angle(l.Head) * facets.Degree,
+		Wavelength: gems.Wavelength(l.Wavelength),
+		Averaged:   l.Unpolarised,
+		Below:      l.Below,
+		Pixels:     l.Pixels,
+		Samples:    l.Samples,
+		Error:      l.Error,
+		Seed:       l.Seed,
+		Workers:    l.Workers,
+	}
+	var folder *outFolder
+	if l.Out != "" { // a folder that cannot be written is told before the work, not after it
+		if folder, err = openOut(l.Out); err != nil {
+			return err
+		}
+	}
+	bar := newProgress(c.env.Stderr, c.env.Terminal)
+	result, err := trace.Run(c, trace.Scene{Stone: s.stone, Material: s.material, Media: media}, settings,
+		func(r *trace.Result) { bar.show(r.Done) })
+	bar.clear()
+	if err != nil {
+		var outside *gems.RangeError
+		if errors.As(err, &outside) {
+			return commandFaultf("--wavelength: %w", err)
+		}
+		return err
+	}
+	if err := context.Cause(c); err != nil {
+		return err
+	}
+	for _, column := range result.Columns {
+		if e := column.StandardError.Max(); l.Samples == 0 && !(e < l.Error) {
+			c.warn("%s: the standard error is %.2g, not below %g: the run ended at its greatest length", column.Medium.Name, e, l.Error)
+		}
+	}
+	report := l.report(s, result)
+	if folder != nil {
+		if err := folder.write(c, s, report, result); err != nil {
+			return err
+		}
+	}
+	if c.json {
+		return printJSON(c.out, report)
+	}
+	printLook(c.out, s, report, result)
+	if folder != nil {
+		fmt.Fprintf(c.out, "\nMaps written to %s: %s\n", folder.path, strings.Join(folder.written, " "))
+	}
+	return nil
+}
+
+// surroundings reads a list of names and plain refractive indices.
+func surroundings(list string) ([]*gems.Material, error) {
+	const most = 12 // columns that a sheet can hold side by side
+	names := strings.Split(list, ",")
+	if len(names) > most {
+		return nil, commandFaultf("--in: %d surroundings are too many; use at most %d", len(names), most)
+	}
+	var media []*gems.Material
+	seen := map[string]bool{}
+	for _, name := range names {
+		name = strings.TrimSpace(name)
+		if name == "" {
+			return nil, commandFaultf("--in %q: a name is missing beside a comma", list)
+		}
+		m, err := surrounding(name)
+		if err != nil {
+			return nil, err
+		}
+		if seen[m.Key] {
+			return nil, commandFaultf("--in %q: %s stands there twice", list, name)
+		}
+		seen[m.Key] = true
+		media = append(media, m)
+	}
+	return media, nil
+}
+
+func surrounding(name string) (*gems.Material, error) {
+	index, err := strconv.ParseFloat(name, 64)
+	if err != nil {
+		return findMaterial(name)
+	}
+	m, err := gems.Plain(name, index, 0)
+	if err != nil {
+		return nil, commandFaultf("--in: %w", err)
+	}
+	return m, nil
+}
+
+func (l *lookCommand) report(s *subject, result *trace.Result) *lookResult {
+	report := &lookResult{
+		Plan:         s.name,
+		Material:     s.material.Key,
+		BodyColour:   s.material.Describe().BodyColour,
+		WidthMM:      s.measures.WidthMM,
+		View:         lookView{TiltDeg: l.Tilt, TurnDeg: l.Turn},
+		Light:        l.Light,
+		HeadDeg:      l.Head,
+		Polarisation: "full",
+	}
+	if l.Unpolarised {
+		report.Polarisation = "averaged"
+	}
+	if l.Wavelength != 0 {
+		report.WavelengthNM = &l.Wavelength
+	}
+	for i := range result.Columns {
+		column := &result.Columns[i]
+		medium := lookMedium{
+			Name:          column.Medium.Key,
+			Arrangement:   "around",
+			IndexMedium:   column.IndexMedium,
+			IndexStone:    column.IndexStone,
+			Ledger:        column.Ledger,
+			StandardError: column.StandardError,
+			Lit:           column.Lit,
+			From:          column.From[:],
+			LeakyArea:     column.LeakyArea,
+			WindowedArea:  column.WindowedArea,
+			Segments:      column.Segments,
+			Seconds:       result.Elapsed.Seconds(),
+		}
+		if column.HasCritical {
+			critical := column.Critical.Degrees()
+			medium.CriticalDeg = &critical
+		}
+		report.Media = append(report.Media, medium)
+	}
+	return report
+}
+
+// viewWords says how the stone is seen and lit.
+func (r *lookResult) viewWords() string {
+	view := "seen face-up"
+	if r.View.TiltDeg != 0 {
+		view = fmt.Sprintf("tilted %g° toward azimuth %g°", r.View.TiltDeg, r.View.TurnDeg)
+	}
+	light := fmt.Sprintf("%s light", r.Light)
+	head := "no head in the way"
+	if r.HeadDeg > 0 {
+		head = fmt.Sprintf("a head of %g° in the way", r.HeadDeg)
+	}
+	waves := "spectrum 400 to 700 nm"
+	if r.WavelengthNM != nil {
+		waves = fmt.Sprintf("%g nm", *r.WavelengthNM)
+	}
+	polarisation := "polarisation tracked in full"
+	if r.Polarisation == "averaged" {
+		polarisation = "polarisation averaged at every facet"
+	}
+	return strings.Join([]string{view, light, head, waves, polarisation}, ", ")
+}
+
+// stoneWords says what the stone is.
+func (r *lookResult) stoneWords(s *subject) string {
+	words := fmt.Sprintf("%s, %s, %.2f mm wide", s.material.Name, r.BodyColour, r.WidthMM)
+	if carats := s.carats(); carats != nil {
+		words += fmt.Sprintf(", %.2f ct", *carats)
+	}
+	return words
+}
+
+// remarks says how far the indices behind the numbers are to be trusted.
+func remarks(s *subject, result *trace.Result) []string {
+	var all []string
+	if c := s.material.Character(); c != gems.Isotropic {
+		which := "ordinary"
+		if c.Biaxial() {
+			which = "mean"
+		}
+		all = append(all, fmt.Sprintf("%s is %s: traced as if singly refracting, at its %s index", s.material.Name, c, which))
+	}
+	var fitted []string
+	for _, m := range append([]*gems.Material{s.material}, media(result)...) {
+		if m.Fitted() && m.Group != gems.Plainly {
+			fitted = append(fitted, m.Name)
+		}
+	}
+	if len(fitted) > 0 {
+		all = append(all, "dispersion fitted through fewer published numbers: "+strings.Join(fitted, ", "))
+	}
+	return all
+}
+
+func media(result *trace.Result) []*gems.Material {
+	var all []*gems.Material
+	for i := range result.Columns {
+		all = append(all, result.Columns[i].Medium)
+	}
+	return all
+}
+
+func printLook(w io.Writer, s *subject, r *lookResult, result *trace.Result) {
+	fmt.Fprintf(w, "%s: %s\n%s\n", r.Plan, r.stoneWords(s), r.viewWords())
+	for _, remark := range remarks(s, result) {
+		fmt.Fprintln(w, remark)
+	}
+	fmt.Fprintln(w)
+	t := tabwriter.NewWriter(w, 0, 0, 3, ' ', 0)
+	row := func(name string, cell func(i int) string) {
+		fmt.Fprint(t, name)
+		for i := range r.Media {
+			fmt.Fprint(t, "\t", cell(i))
+		}
+		fmt.Fprintln(t)
+	}
+	row("", func(i int) string { return result.Columns[i].Medium.Name })
+	row("index around", func(i int) string { return fmt.Sprintf("%.4f", r.Media[i].IndexMedium) })
+	row("index of the stone", func(i int) string { return fmt.Sprintf("%.4f", r.Media[i].IndexStone) })
+	row("critical angle", func(i int) string { return inDegrees(r.Media[i].CriticalDeg, "there is none") })
+	for q := trace.Surface; q <= trace.Unresolved; q++ {
+		row(q.String(), func(i int) string {
+			return withError(q.Of(r.Media[i].Ledger), q.Of(r.Media[i].StandardError))
+		})
+	}
+	row("leaky area", func(i int) string {
+		return withError(r.Media[i].LeakyArea, result.Columns[i].LeakyError)
+	})
+	row("windowed area", func(i int) string {
+		return withError(r.Media[i].WindowedArea, result.Columns[i].WindowedError)
+	})
+	row("lit, white paper 1", func(i int) string { return fmt.Sprintf("%.*f", decimals, r.Media[i].Lit.Sum) })
+	t.Flush()
+	rays := float64(result.Rays)
+	fmt.Fprintf(w, "\nShares of one viewing ray, ± the standard error; the first six sum to 1. "+
+		"%s rays in %.2f s.\n", thousands(rays), result.Elapsed.Seconds())
+}
+
+// thousands writes a count with its unit, to three figures.
+func thousands(n float64) string {
+	switch {
+	case n >= 1e6:
+		return fmt.Sprintf("%.3g million", n/1e6)
+	case n >= 1e4:
+		return fmt.Sprintf("%.0f thousand", math.Round(n/1e3))
+	default:
+		return fmt.Sprintf("%.0f", n)
+	}
+}
