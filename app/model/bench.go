@@ -58,7 +58,7 @@ func (b *Bench) subject(plan *facets.Plan) (Subject, error) {
 	if err != nil {
 		return Subject{}, err
 	}
-	return Subject{Stone: stone, Material: material}, nil
+	return Subject{Stone: stone, Material: material, Measures: stone.Measure()}, nil
 }
 
 // MaterialOf returns the material that a plan names or brings along.

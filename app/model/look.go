@@ -19,6 +19,7 @@ import (
 type Subject struct {
 	Stone    *facets.Stone
 	Material *gems.Material
+	Measures facets.Measures
 }
 
 // Rows is how many quantities the grid of maps shows at once.
