@@ -418,8 +418,9 @@ func TestStopped(t *testing.T) {
 	var stdout, stderr bytes.Buffer
 	dir := filepath.Join(t.TempDir(), "maps")
 	status := Main(ctx, []string{"look", "--error", "0.00001", "--out", dir}, Environment{
-		Stdout: &stdout,
-		Stderr: &stopper{&stderr, cancel},
+		Stdout:   &stdout,
+		Stderr:   &stopper{&stderr, cancel},
+		Terminal: true, // where the bar is drawn from the first pass on
 	})
 	if status != Stopped || stdout.Len() != 0 || !strings.Contains(stderr.String(), "stopped") {
 		t.Errorf("exit status %d, stdout %q, stderr %q", status, stdout.String(), stderr.String())
