@@ -16,7 +16,9 @@ const (
 
 // String returns the character in words.
 func (c Character) String() string {
-	return [...]string{"isotropic", "uniaxial positive", "uniaxial negative", "biaxial positive", "biaxial negative"}[c]
+	return [...]string{
+		"isotropic", "uniaxial positive", "uniaxial negative", "biaxial positive", "biaxial negative",
+	}[c]
 }
 
 // Uniaxial reports whether there is one optic axis.

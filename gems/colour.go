@@ -41,15 +41,16 @@ func ColouredBody(ordinary, extraordinary Colour, thickness float64) (*Absorptio
 			"through which it was seen", thickness)
 	}
 	a := &Absorption{
-		Name:   fmt.Sprintf("%v along the ordinary and %v along the extraordinary ray through %g mm", ordinary, extraordinary, thickness),
+		Name: fmt.Sprintf("%v along the ordinary and %v along the extraordinary ray through %g mm",
+			ordinary, extraordinary, thickness),
 		Source: "smooth spectrum through colours that a user gave (Jakob and Hanika 2019); computed",
 	}
 	if ordinary == extraordinary {
 		a.Name = fmt.Sprintf("%v through %g mm", ordinary, thickness)
 	}
-	o, e := smoothTransmittance(ordinary), smoothTransmittance(extraordinary)
-	for i := range spectrumSteps + 1 {
-		w := visibleLo + observerStep*Wavelength(i)
+	sight := newSight()
+	o, e := sight.smoothTransmittance(ordinary), sight.smoothTransmittance(extraordinary)
+	for w := visibleLo; w <= visibleHi; w += sightStep {
 		a.Wavelengths = append(a.Wavelengths, w)
 		a.Ordinary = append(a.Ordinary, -math.Log(o.at(w))/thickness)
 		a.Extraordinary = append(a.Extraordinary, -math.Log(e.at(w))/thickness)
@@ -74,15 +75,53 @@ func (c sigmoid) at(w Wavelength) float64 {
 }
 
 // Linear parts of a colour are kept this far from 0 and 1, which the sigmoid only
-// reaches at infinity. On screen 0.0005 of linear light is less than two steps of 255.
-const colourMargin = 0.0005
+// reaches at infinity. Near black 0.0002 of linear light is less than a step of 255.
+const colourMargin = 0.0002
+
+// sight holds the share of every wavelength in the linear sRGB of daylight behind a
+// body, such that a clear body is (1, 1, 1).
+type sight []mgl64.Vec3
+
+// sightStep is the spacing of the spectrum in nm; the steep flanks of saturated colours
+// need a finer one than the observer's table has.
+const sightStep = 1
+
+func newSight() sight {
+	// Rows of the matrix of IEC 61966-2-1, from memory; its white is D65.
+	m := mgl64.Mat3FromRows(
+		mgl64.Vec3{3.2406, -1.5372, -0.4986},
+		mgl64.Vec3{-0.9689, 1.8758, 0.0415},
+		mgl64.Vec3{0.0557, -0.2040, 1.0570},
+	)
+	var s sight
+	var white mgl64.Vec3
+	for w := visibleLo; w <= visibleHi; w += sightStep {
+		row := observerAt(w)
+		share := m.Mul3x1(mgl64.Vec3{row.x, row.y, row.z}.Mul(row.d65))
+		s = append(s, share)
+		white = white.Add(share)
+	}
+	for i, share := range s {
+		s[i] = mgl64.Vec3{share[0] / white[0], share[1] / white[1], share[2] / white[2]}
+	}
+	return s
+}
+
+// colour returns the linear sRGB of daylight behind the spectrum.
+func (s sight) colour(t sigmoid) mgl64.Vec3 {
+	var sum mgl64.Vec3
+	for i, share := range s {
+		sum = sum.Add(share.Mul(t.at(visibleLo + sightStep*Wavelength(i))))
+	}
+	return sum
+}
 
 // smoothTransmittance returns the sigmoid whose colour in daylight is c.
 //
 // It walks from grey to the colour in even steps and mends the three coefficients
 // after each by damped Gauss-Newton steps (Levenberg 1944, Marquardt 1963): Newton
 // from afar would run into the flat ends of the sigmoid.
-func smoothTransmittance(c Colour) sigmoid {
+func (s sight) smoothTransmittance(c Colour) sigmoid {
 	if min(c.R, c.G, c.B) >= 1 {
 		return nil
 	}
@@ -95,11 +134,11 @@ func smoothTransmittance(c Colour) sigmoid {
 	x := 2*grey - 1
 	c2 := x / math.Sqrt(1-x*x) // S(c2) = grey
 	coefficients := mgl64.Vec3{0, 0, c2}
-	const steps, mendings = 32, 40
+	const steps, mendings = 16, 40
 	for i := 1; i <= steps; i++ {
 		target := from.Add(want.Sub(from).Mul(float64(i) / steps))
 		for range mendings {
-			if !mend(&coefficients, target) {
+			if !s.mend(&coefficients, target) {
 				break
 			}
 		}
@@ -109,12 +148,12 @@ func smoothTransmittance(c Colour) sigmoid {
 
 // mend takes one damped Gauss-Newton step of the coefficients towards the target and
 // reports whether it was worth taking.
-func mend(c *mgl64.Vec3, target mgl64.Vec3) bool {
+func (s sight) mend(c *mgl64.Vec3, target mgl64.Vec3) bool {
 	const (
 		closeEnough = 1e-12 // squared distance in linear light
 		nudge       = 1e-6
 	)
-	miss := func(c mgl64.Vec3) mgl64.Vec3 { return linearColour(sigmoid(c[:])).Sub(target) }
+	miss := func(c mgl64.Vec3) mgl64.Vec3 { return s.colour(c[:]).Sub(target) }
 	r := miss(*c)
 	if r.Dot(r) < closeEnough {
 		return false
@@ -139,26 +178,6 @@ func mend(c *mgl64.Vec3, target mgl64.Vec3) bool {
 		}
 	}
 	return false
-}
-
-// linearColour returns the linear sRGB of daylight behind the spectrum, in which a
-// clear body is (1, 1, 1).
-func linearColour(t sigmoid) mgl64.Vec3 {
-	var through, clear mgl64.Vec3
-	for i := range spectrumSteps + 1 {
-		row := observer[spectrumFirst+i]
-		xyz := mgl64.Vec3{row.x, row.y, row.z}.Mul(row.d65)
-		clear = clear.Add(xyz)
-		through = through.Add(xyz.Mul(t.at(visibleLo + observerStep*Wavelength(i))))
-	}
-	// Rows of the matrix of IEC 61966-2-1, from memory; its white is D65.
-	m := mgl64.Mat3FromRows(
-		mgl64.Vec3{3.2406, -1.5372, -0.4986},
-		mgl64.Vec3{-0.9689, 1.8758, 0.0415},
-		mgl64.Vec3{0.0557, -0.2040, 1.0570},
-	)
-	rgb, white := m.Mul3x1(through), m.Mul3x1(clear)
-	return mgl64.Vec3{rgb[0] / white[0], rgb[1] / white[1], rgb[2] / white[2]}
 }
 
 // linear undoes the transfer curve of IEC 61966-2-1.

@@ -43,7 +43,7 @@ type Dispersion struct {
 	Lo, Hi       Wavelength // published range, nm
 	Temperature  string     // as published, "20 °C" or "room"; empty where not known
 	Fitted       bool       // fitted here, through fewer published numbers
-	Continued    bool       // carried on to 400 and 700 nm where the published range ends inside; those parts count as fitted
+	Continued    bool       // carried on to 400 and 700 nm from a published range that ends inside: fitted there
 	Vacuum       bool       // the formula gives the index against vacuum
 	Source       Source     // of formula and coefficients; for a fit, of the index
 	SpreadSource Source     // for a fit, of the dispersion that goes with the index

@@ -44,7 +44,9 @@ func (d *document) fault(path, name, field, got, why, remedy string) {
 	for above := path; line == 0 && above != ""; line = d.lines[above] {
 		above = above[:max(strings.LastIndexByte(above, '.'), 0)]
 	}
-	d.faults = append(d.faults, &Fault{File: d.file, Line: line, Material: name, Field: field, Got: got, Why: why, Remedy: remedy})
+	d.faults = append(d.faults, &Fault{
+		File: d.file, Line: line, Material: name, Field: field, Got: got, Why: why, Remedy: remedy,
+	})
 }
 
 func (t *table) at(field string) string { return strings.TrimPrefix(t.path+"."+field, ".") }

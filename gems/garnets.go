@@ -55,7 +55,8 @@ func garnets() []*Material {
 			Toughness: "good", ToughnessSource: handbooks,
 			Cautions:      []string{wet},
 			CautionSource: practice,
-			Notes:         "The index is the middle of 1.79 to 1.81; malaya stones, mixed with pyrope, lie near 1.76.",
+			Notes: "The index is the middle of 1.79 to 1.81; malaya stones, mixed with " +
+				"pyrope, lie near 1.76.",
 		},
 		{
 			Key: "grossular", Name: "Grossular",

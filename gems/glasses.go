@@ -8,7 +8,12 @@ func glasses() []*Material {
 			Names: []string{"glass", "bk7", "n-bk7", "optical crown"},
 			Group: Glass,
 			Rays: []Dispersion{
-				{Kind: Resonance, Coefficients: []float64{1, 0, 1.03961212, 0.00600069867, 0.231792344, 0.0200179144, 1.01046945, 103.560653}, Lo: 300, Hi: 2500, Temperature: "20 °C", Source: schott2017},
+				{Kind: Resonance, Coefficients: []float64{
+					1, 0,
+					1.03961212, 0.00600069867,
+					0.231792344, 0.0200179144,
+					1.01046945, 103.560653,
+				}, Lo: 300, Hi: 2500, Temperature: "20 °C", Source: schott2017},
 			},
 			Density: 2.51, DensityRange: Span{2.51, 2.51}, DensitySource: schottMemory,
 			Hardness: Span{5.5, 6}, WearSource: handbooks,
@@ -22,7 +27,16 @@ func glasses() []*Material {
 			Names: []string{"b270", "soda-lime glass", "bottle glass"},
 			Group: Glass,
 			Rays: []Dispersion{
-				{Kind: Points, Coefficients: []float64{435.83, 1.5341, 479.99, 1.5297, 486.13, 1.5292, 546.07, 1.5251, 587.56, 1.5230, 589.29, 1.5229, 643.85, 1.5207, 656.27, 1.5203}, Lo: 435.83, Hi: 656.27, Temperature: "20 °C", Continued: true, Source: schottB270},
+				{Kind: Points, Coefficients: []float64{
+					435.83, 1.5341,
+					479.99, 1.5297,
+					486.13, 1.5292,
+					546.07, 1.5251,
+					587.56, 1.5230,
+					589.29, 1.5229,
+					643.85, 1.5207,
+					656.27, 1.5203,
+				}, Lo: 435.83, Hi: 656.27, Temperature: "20 °C", Continued: true, Source: schottB270},
 			},
 			Density: 2.55, DensityRange: Span{2.55, 2.55}, DensitySource: schottMemory,
 			Hardness: Span{5.5, 6}, WearSource: handbooks,
@@ -36,7 +50,12 @@ func glasses() []*Material {
 			Names: []string{"paste", "lead glass", "strass", "f2"},
 			Group: Glass,
 			Rays: []Dispersion{
-				{Kind: Resonance, Coefficients: []float64{1, 0, 1.34533359, 0.00997743871, 0.209073176, 0.0470450767, 0.937357162, 111.886764}, Lo: 320, Hi: 2500, Temperature: "20 °C", Source: schott2017},
+				{Kind: Resonance, Coefficients: []float64{
+					1, 0,
+					1.34533359, 0.00997743871,
+					0.209073176, 0.0470450767,
+					0.937357162, 111.886764,
+				}, Lo: 320, Hi: 2500, Temperature: "20 °C", Source: schott2017},
 			},
 			Density: 3.599, DensityRange: Span{3.599, 3.599}, DensitySource: schott2017,
 			Hardness: Span{5, 5.5}, WearSource: handbooks,
@@ -50,7 +69,12 @@ func glasses() []*Material {
 			Names: []string{"sf6", "heavy lead glass"},
 			Group: Glass,
 			Rays: []Dispersion{
-				{Kind: Resonance, Coefficients: []float64{1, 0, 1.72448482, 0.0134871947, 0.390104889, 0.0569318095, 1.04572858, 118.557185}, Lo: 365, Hi: 2500, Temperature: "20 °C", Source: schott2017},
+				{Kind: Resonance, Coefficients: []float64{
+					1, 0,
+					1.72448482, 0.0134871947,
+					0.390104889, 0.0569318095,
+					1.04572858, 118.557185,
+				}, Lo: 365, Hi: 2500, Temperature: "20 °C", Source: schott2017},
 			},
 			Density: 5.18, DensityRange: Span{5.18, 5.18}, DensitySource: schott2017,
 			Hardness: Span{4.5, 5}, WearSource: handbooks,
@@ -64,7 +88,11 @@ func glasses() []*Material {
 			Names: []string{"fused silica", "fused quartz", "lechatelierite"},
 			Group: Glass,
 			Rays: []Dispersion{
-				{Kind: Sellmeier, Coefficients: []float64{0.6961663, 0.0684043, 0.4079426, 0.1162414, 0.8974794, 9.896161}, Lo: 210, Hi: 6700, Temperature: "20 °C", Source: malitson1965},
+				{Kind: Sellmeier, Coefficients: []float64{
+					0.6961663, 0.0684043,
+					0.4079426, 0.1162414,
+					0.8974794, 9.896161,
+				}, Lo: 210, Hi: 6700, Temperature: "20 °C", Source: malitson1965},
 			},
 			Density: 2.2, DensityRange: Span{2.2, 2.21}, DensitySource: handbooks,
 			Hardness: Span{5.5, 6.5}, WearSource: handbooks,
@@ -107,7 +135,8 @@ func glasses() []*Material {
 			Names: []string{"succinite"},
 			Group: Organic,
 			Rays: []Dispersion{
-				{Kind: Constant, Coefficients: []float64{1.540}, Lo: 400, Hi: 700, Fitted: true, Source: gemTable},
+				{Kind: Constant, Coefficients: []float64{1.540},
+					Lo: 400, Hi: 700, Fitted: true, Source: gemTable},
 			},
 			Density: 1.08, DensityRange: Span{1.05, 1.09}, DensitySource: gemTable,
 			Hardness: Span{2, 2.5}, WearSource: gemTable,
@@ -122,7 +151,15 @@ func glasses() []*Material {
 			Names: []string{"pmma", "plexiglass", "poly(methyl methacrylate)"},
 			Group: Organic,
 			Rays: []Dispersion{
-				{Kind: Laurent, Coefficients: []float64{2.1778, 0, 6.1209e-3, 2, -1.5004e-3, 4, 2.3678e-2, -2, -4.2137e-3, -4, 7.3417e-4, -6, -4.5042e-5, -8}, Lo: 420, Hi: 1620, Temperature: "20.1 °C", Continued: true, Source: beadie2015},
+				{Kind: Laurent, Coefficients: []float64{
+					2.1778, 0,
+					6.1209e-3, 2,
+					-1.5004e-3, 4,
+					2.3678e-2, -2,
+					-4.2137e-3, -4,
+					7.3417e-4, -6,
+					-4.5042e-5, -8,
+				}, Lo: 420, Hi: 1620, Temperature: "20.1 °C", Continued: true, Source: beadie2015},
 			},
 			Density: 1.18, DensityRange: Span{1.17, 1.2}, DensitySource: handbooks,
 			Hardness: Span{2.5, 3}, WearSource: handbooks,
@@ -136,7 +173,8 @@ func glasses() []*Material {
 			Key: "polystyrene", Name: "Polystyrene",
 			Group: Organic,
 			Rays: []Dispersion{
-				{Kind: Resonance, Coefficients: []float64{1, 0, 1.4435, 0.020216}, Lo: 436.8, Hi: 1052, Temperature: "20 °C", Continued: true, Source: sultanova2009},
+				{Kind: Resonance, Coefficients: []float64{1, 0, 1.4435, 0.020216},
+					Lo: 436.8, Hi: 1052, Temperature: "20 °C", Continued: true, Source: sultanova2009},
 			},
 			Density: 1.05, DensityRange: Span{1.04, 1.06}, DensitySource: handbooks,
 			Hardness: Span{2, 2.5}, WearSource: handbooks,

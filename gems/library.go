@@ -81,6 +81,9 @@ func (e *UnknownError) Error() string {
 func (l *Library) unknown(key, wanted string) *UnknownError {
 	e := &UnknownError{Key: key, Known: make([]string, len(l.materials))}
 	nearest := max(2, len(wanted)/3) + 1 // more slips than these are another word
+	if len(wanted) < 2 {
+		nearest = 0 // anything could be meant
+	}
 	for i, m := range l.materials {
 		e.Known[i] = m.Key
 		for _, name := range slices.Concat([]string{m.Key, m.Name}, m.Names) {

@@ -65,7 +65,9 @@ const (
 
 // String returns the group's word.
 func (g Group) String() string {
-	return [...]string{"mineral", "synthetic crystal", "glass", "organic", "coating", "liquid", "gas", "user's own"}[g]
+	return [...]string{
+		"mineral", "synthetic crystal", "glass", "organic", "coating", "liquid", "gas", "user's own",
+	}[g]
 }
 
 // Principal holds the refractive indices along the three principal axes: three
@@ -156,7 +158,8 @@ type RangeError struct {
 
 // Error names the wavelength, the range and the remedy.
 func (e *RangeError) Error() string {
-	return fmt.Sprintf("%s: %g nm is outside the range of its refractive index, %g to %g nm; choose a wavelength inside",
+	return fmt.Sprintf("%s: %g nm is outside the range of its refractive index, %g to %g nm; choose "+
+		"a wavelength inside",
 		e.Material, float64(e.Wavelength), float64(e.Lo), float64(e.Hi))
 }
 
@@ -176,14 +179,16 @@ func Plain(name string, index, density float64) (*Material, error) {
 			index, name, leastIndex, greatestIndex)
 	}
 	if !(density >= 0 && density <= greatestMass) {
-		return nil, fmt.Errorf("density %g of %q: impossible; use 0 (not known) to %g g/cm³", density, name, greatestMass)
+		return nil, fmt.Errorf("density %g of %q: impossible; use 0 (not known) to %g g/cm³",
+			density, name, greatestMass)
 	}
 	return &Material{
 		Key:   name,
 		Name:  name,
 		Group: Plainly,
 		Rays: []Dispersion{{
-			Kind: Constant, Coefficients: []float64{index}, Lo: visibleLo, Hi: visibleHi, Fitted: true, Source: given,
+			Kind: Constant, Coefficients: []float64{index},
+			Lo: visibleLo, Hi: visibleHi, Fitted: true, Source: given,
 		}},
 		Density:       density,
 		DensitySource: given,

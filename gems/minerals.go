@@ -8,7 +8,8 @@ func others() []*Material {
 			Key: "diamond", Name: "Diamond",
 			Names: []string{"synthetic diamond", "lab-grown diamond"},
 			Rays: []Dispersion{
-				{Kind: Sellmeier, Coefficients: []float64{0.3306, 0.1750, 4.3356, 0.1060}, Lo: 226, Hi: 760, Temperature: "10 to 30 °C", Source: peter1923},
+				{Kind: Sellmeier, Coefficients: []float64{0.3306, 0.1750, 4.3356, 0.1060},
+					Lo: 226, Hi: 760, Temperature: "10 to 30 °C", Source: peter1923},
 			},
 			Density: 3.515, DensityRange: Span{3.51, 3.52}, DensitySource: gemTable,
 			Hardness: Span{10, 10}, WearSource: gemTable,
@@ -21,7 +22,11 @@ func others() []*Material {
 			Key: "fluorite", Name: "Fluorite",
 			Names: []string{"fluorspar", "Blue John"},
 			Rays: []Dispersion{
-				{Kind: Sellmeier, Coefficients: []float64{0.5675888, 0.050263605, 0.4710914, 0.1003909, 3.8484723, 34.649040}, Lo: 230, Hi: 9700, Temperature: "24 °C", Source: malitson1963},
+				{Kind: Sellmeier, Coefficients: []float64{
+					0.5675888, 0.050263605,
+					0.4710914, 0.1003909,
+					3.8484723, 34.649040,
+				}, Lo: 230, Hi: 9700, Temperature: "24 °C", Source: malitson1963},
 			},
 			Density: 3.18, DensityRange: Span{3.17, 3.19}, DensitySource: gemTable,
 			Hardness: Span{4, 4}, WearSource: gemTable,
@@ -34,8 +39,10 @@ func others() []*Material {
 			Key: "apatite", Name: "Apatite",
 			Names: []string{"fluorapatite"},
 			Rays: []Dispersion{
-				{Kind: Pole, Coefficients: []float64{2.626769, -0.007653, 0.014626, 0.012833}, Lo: 400, Hi: 1000, Temperature: "room", Source: weber2003},
-				{Kind: Pole, Coefficients: []float64{2.620175, -0.007544, 0.014703, 0.011037}, Lo: 400, Hi: 1000, Temperature: "room", Source: weber2003},
+				{Kind: Pole, Coefficients: []float64{2.626769, -0.007653, 0.014626, 0.012833},
+					Lo: 400, Hi: 1000, Temperature: "room", Source: weber2003},
+				{Kind: Pole, Coefficients: []float64{2.620175, -0.007544, 0.014703, 0.011037},
+					Lo: 400, Hi: 1000, Temperature: "room", Source: weber2003},
 			},
 			Density: 3.2, DensityRange: Span{3.16, 3.22}, DensitySource: gemTable,
 			Hardness: Span{5, 5}, WearSource: gemTable,
@@ -43,14 +50,23 @@ func others() []*Material {
 			Toughness: "brittle; sudden heat cracks it", ToughnessSource: handbooks,
 			Cautions:      []string{wet, stress, acid},
 			CautionSource: practice,
-			Notes:         "The formula is for fluorapatite; gem stones run from 1.628 to 1.649.",
+			Notes: "The formula is for fluorapatite; gem stones run from 1.628 to 1.649, and " +
+				"gem tables print a dispersion of 0.013.",
 		},
 		{
 			Key: "calcite", Name: "Calcite",
 			Names: []string{"Iceland spar"},
 			Rays: []Dispersion{
-				{Kind: Resonance, Coefficients: []float64{1.73358749, 0, 0.96464345, 1.94325203e-2, 1.82831454, 120}, Lo: 204, Hi: 2172, Temperature: "room", Source: ghosh1999},
-				{Kind: Resonance, Coefficients: []float64{1.35859695, 0, 0.82427830, 1.06689543e-2, 0.14429128, 120}, Lo: 204, Hi: 2172, Temperature: "room", Source: ghosh1999},
+				{Kind: Resonance, Coefficients: []float64{
+					1.73358749, 0,
+					0.96464345, 1.94325203e-2,
+					1.82831454, 120,
+				}, Lo: 204, Hi: 2172, Temperature: "room", Source: ghosh1999},
+				{Kind: Resonance, Coefficients: []float64{
+					1.35859695, 0,
+					0.82427830, 1.06689543e-2,
+					0.14429128, 120,
+				}, Lo: 204, Hi: 2172, Temperature: "room", Source: ghosh1999},
 			},
 			Density: 2.71, DensityRange: Span{2.7, 2.72}, DensitySource: gemTable,
 			Hardness: Span{3, 3}, WearSource: gemTable,
@@ -120,8 +136,10 @@ func others() []*Material {
 			Key: "scheelite", Name: "Scheelite",
 			Names: []string{"calcium tungstate"},
 			Rays: []Dispersion{
-				{Kind: Sellmeier, Coefficients: []float64{2.5493, 0.1347, 0.9200, 10.815}, Lo: 450, Hi: 4000, Temperature: "room", Continued: true, Source: bond1965},
-				{Kind: Sellmeier, Coefficients: []float64{2.6041, 0.1379, 4.1237, 21.371}, Lo: 450, Hi: 4000, Temperature: "room", Continued: true, Source: bond1965},
+				{Kind: Sellmeier, Coefficients: []float64{2.5493, 0.1347, 0.9200, 10.815},
+					Lo: 450, Hi: 4000, Temperature: "room", Continued: true, Source: bond1965},
+				{Kind: Sellmeier, Coefficients: []float64{2.6041, 0.1379, 4.1237, 21.371},
+					Lo: 450, Hi: 4000, Temperature: "room", Continued: true, Source: bond1965},
 			},
 			Density: 6.0, DensityRange: Span{5.9, 6.1}, DensitySource: gemTable,
 			Hardness: Span{4.5, 5}, WearSource: gemTable,
@@ -129,13 +147,18 @@ func others() []*Material {
 			Toughness: "brittle", ToughnessSource: handbooks,
 			Cautions:      []string{wet, cleaves},
 			CautionSource: practice,
-			Notes:         "Tables disagree about its dispersion: 0.038 or 0.026, the latter the value from C to F that the formula gives too.",
+			Notes: "Tables disagree about its dispersion: 0.038 or 0.026, the latter the " +
+				"value from C to F that the formula gives too.",
 		},
 		{
 			Key: "sphalerite", Name: "Sphalerite",
 			Names: []string{"zinc blende"},
 			Rays: []Dispersion{
-				{Kind: Pole, Coefficients: []float64{8.393, 0, 0.14383, 0.2421 * 0.2421, 4430.99, 36.71 * 36.71}, Lo: 405, Hi: 13000, Temperature: "20 °C", Continued: true, Source: debenham1984},
+				{Kind: Pole, Coefficients: []float64{
+					8.393, 0,
+					0.14383, 0.2421 * 0.2421,
+					4430.99, 36.71 * 36.71,
+				}, Lo: 405, Hi: 13000, Temperature: "20 °C", Continued: true, Source: debenham1984},
 			},
 			Density: 4.09, DensityRange: Span{3.9, 4.1}, DensitySource: handbooks,
 			Hardness: Span{3.5, 4}, WearSource: handbooks,
@@ -148,8 +171,10 @@ func others() []*Material {
 			Key: "wulfenite", Name: "Wulfenite",
 			Names: []string{"lead molybdate"},
 			Rays: []Dispersion{
-				{Kind: Sellmeier, Coefficients: []float64{3.54642, 0.18518, 0.58270, 0.33764}, Lo: 440, Hi: 1080, Temperature: "room", Continued: true, Source: malitsonHandbook},
-				{Kind: Sellmeier, Coefficients: []float64{3.52555, 0.17950, 0.20660, 0.32537}, Lo: 440, Hi: 1080, Temperature: "room", Continued: true, Source: malitsonHandbook},
+				{Kind: Sellmeier, Coefficients: []float64{3.54642, 0.18518, 0.58270, 0.33764},
+					Lo: 440, Hi: 1080, Temperature: "room", Continued: true, Source: malitsonHandbook},
+				{Kind: Sellmeier, Coefficients: []float64{3.52555, 0.17950, 0.20660, 0.32537},
+					Lo: 440, Hi: 1080, Temperature: "room", Continued: true, Source: malitsonHandbook},
 			},
 			Density: 6.8, DensityRange: Span{6.7, 7.0}, DensitySource: gemTable,
 			Hardness: Span{2.5, 3}, WearSource: gemTable,
@@ -157,6 +182,8 @@ func others() []*Material {
 			Toughness: "very brittle", ToughnessSource: handbooks,
 			Cautions:      []string{lead, cleaves, stress},
 			CautionSource: practice,
+			Notes: "Gem tables print a dispersion of 0.203; the formula ends at 440 nm, " +
+				"short of G, and gives more.",
 		},
 		{
 			Key: "cerussite", Name: "Cerussite",

@@ -32,7 +32,8 @@ func silicates() []*Material {
 			Toughness: "cleaves at a knock; bears heat badly", ToughnessSource: handbooks,
 			Cautions:      []string{wet, cleaves, irradiated, stress},
 			CautionSource: practice,
-			Notes:         "The row is a stone rich in fluorine; pink and imperial stones rich in hydroxyl lie near 1.629 to 1.637 (from memory, not checked).",
+			Notes: "The row is a stone rich in fluorine; pink and imperial stones rich in " +
+				"hydroxyl lie near 1.629 to 1.637 (from memory, not checked).",
 		},
 		{
 			Key: "tourmaline", Name: "Tourmaline",
@@ -327,7 +328,8 @@ func silicates() []*Material {
 			Toughness: "brittle", ToughnessSource: handbooks,
 			Cautions:      []string{wet, radioactive, chips},
 			CautionSource: practice,
-			Notes:         "Broken down by its own radioactivity and nearly isotropic; its index runs from 1.78 to 1.85.",
+			Notes: "Broken down by its own radioactivity and nearly isotropic; its index " +
+				"runs from 1.78 to 1.85.",
 		},
 		{
 			Key: "sphene", Name: "Sphene",
@@ -343,7 +345,8 @@ func silicates() []*Material {
 			Toughness: "brittle; cracks with heat", ToughnessSource: handbooks,
 			Cautions:      []string{wet, cleaves, stress},
 			CautionSource: practice,
-			Notes:         "Its greatest index runs from about 1.985 to 2.034 and its birefringence from 0.100 to 0.160.",
+			Notes: "Its greatest index runs from about 1.985 to 2.034 and its birefringence " +
+				"from 0.100 to 0.160.",
 		},
 	}
 }

@@ -7,8 +7,16 @@ func tectosilicates() []*Material {
 			Key: "quartz", Name: "Quartz",
 			Names: []string{"rock crystal", "amethyst", "citrine", "ametrine", "smoky quartz", "rose quartz", "prasiolite", "tiger's-eye"},
 			Rays: []Dispersion{
-				{Kind: Resonance, Coefficients: []float64{1.28604141, 0, 1.07044083, 1.00585997e-2, 1.10202242, 100}, Lo: 198, Hi: 2053.1, Temperature: "room", Source: ghosh1999},
-				{Kind: Resonance, Coefficients: []float64{1.28851804, 0, 1.09509924, 1.02101864e-2, 1.15662475, 100}, Lo: 198, Hi: 2053.1, Temperature: "room", Source: ghosh1999},
+				{Kind: Resonance, Coefficients: []float64{
+					1.28604141, 0,
+					1.07044083, 1.00585997e-2,
+					1.10202242, 100,
+				}, Lo: 198, Hi: 2053.1, Temperature: "room", Source: ghosh1999},
+				{Kind: Resonance, Coefficients: []float64{
+					1.28851804, 0,
+					1.09509924, 1.02101864e-2,
+					1.15662475, 100,
+				}, Lo: 198, Hi: 2053.1, Temperature: "room", Source: ghosh1999},
 			},
 			Density: 2.65, DensityRange: Span{2.65, 2.66}, DensitySource: gemTable,
 			Hardness: Span{7, 7}, WearSource: gemTable,
@@ -90,7 +98,8 @@ func tectosilicates() []*Material {
 			Toughness: "brittle", ToughnessSource: handbooks,
 			Cautions:      []string{wet, stress},
 			CautionSource: practice,
-			Notes:         "A solid solution: its indices run from 1.536 to 1.600 and its birefringence from 0.004 to 0.037. The row is a usual yellow stone; measure yours.",
+			Notes: "A solid solution: its indices run from 1.536 to 1.600 and its " +
+				"birefringence from 0.004 to 0.037. The row is a usual yellow stone; measure yours.",
 		},
 		{
 			Key: "pollucite", Name: "Pollucite",

@@ -166,7 +166,8 @@ func (t *table) rays(from Source) []Dispersion {
 		if hasSpread {
 			rays = append(rays, fitted(n, spread, from, from))
 		} else {
-			rays = append(rays, Dispersion{Kind: Constant, Coefficients: []float64{n}, Lo: visibleLo, Hi: visibleHi,
+			rays = append(rays, Dispersion{Kind: Constant, Coefficients: []float64{n},
+				Lo: visibleLo, Hi: visibleHi,
 				Fitted: true, Source: from})
 		}
 	}
