@@ -128,6 +128,7 @@ func TestBadInput(t *testing.T) {
 		{"negative pixels", []string{"look", "--pixels", "-1"}, CommandFault, []string{"--pixels", "-1"}},
 		{"a thousand million pixels", []string{"look", "--pixels", "1000000000"}, CommandFault, []string{"--pixels"}},
 		{"pixels as a power", []string{"look", "--pixels", "1e9"}, CommandFault, []string{"--pixels", "not a whole number"}},
+		{"more pixels than memory", []string{"look", "--pixels", "2000"}, CommandFault, []string{"--pixels", "at most 1290"}},
 		{"half a pixel", []string{"look", "--pixels", "20.5"}, CommandFault, []string{"--pixels", "not a whole number"}},
 		{"no samples", []string{"look", "--samples", "0"}, CommandFault, []string{"--samples"}},
 		{"an error of nothing", []string{"look", "--error", "0"}, CommandFault, []string{"--error"}},

@@ -48,7 +48,7 @@ func run(ctx context.Context, args []string, env Environment, out io.Writer) err
 		if err := env.Window(ctx, path); err != nil {
 			return ownFault(err)
 		}
-		return nil
+		return context.Cause(ctx) // a window that a signal closed was stopped
 	}
 	var l line
 	parser, err := kong.New(&l,

@@ -71,6 +71,10 @@ type lookMedium struct {
 	Seconds       float64      `json:"seconds"`
 }
 
+// mostCells bounds the pixels of all maps together. One takes about 60 bytes, three
+// times over while results are handed on.
+const mostCells = 5e6
+
 // Run traces the stone and prints what was found.
 func (l *lookCommand) Run(c call) error {
 	if l.Light != "even" {
@@ -79,6 +83,10 @@ func (l *lookCommand) Run(c call) error {
 	media, err := surroundings(l.In)
 	if err != nil {
 		return err
+	}
+	if most := int(math.Sqrt(mostCells / float64(len(media)))); l.Pixels > most {
+		return commandFaultf("--pixels: %d pixels in %d surroundings do not fit into memory; use at most %d, or fewer surroundings",
+			l.Pixels, len(media), most)
 	}
 	s, err := l.subject(c)
 	if err != nil {
@@ -111,8 +119,11 @@ func (l *lookCommand) Run(c call) error {
 	bar.clear()
 	if err != nil {
 		var outside *gems.RangeError
-		if errors.As(err, &outside) {
+		switch isRange := errors.As(err, &outside); {
+		case isRange && l.Wavelength != 0:
 			return commandFaultf("--wavelength: %w", err)
+		case isRange: // the spectrum reaches beyond what is known of a material
+			return inputFault(err)
 		}
 		return err
 	}
