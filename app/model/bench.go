@@ -127,8 +127,8 @@ func (b *Bench) Tiers() []TierRow {
 // SetAngle gives a tier another angle. With merge the step joins the one before if
 // that set the same tier's angle, as the steps of a drag do until Settle.
 func (b *Bench) SetAngle(tier int, angle facets.Angle, merge bool) error {
-	if !(angle >= 0 && angle <= 90*facets.Degree) {
-		return errors.New("a facet's angle goes from 0° for the table to 90° for the girdle")
+	if !(angle > 0 && angle < 90*facets.Degree) {
+		return errors.New("a facet's angle lies between 0°, the table's, and 90°, the girdle's")
 	}
 	t := b.Doc.Plan().Tiers[tier]
 	if t.HasAngle && math.Abs((t.Angle-angle).Degrees()) < sameAngle {

@@ -18,7 +18,7 @@ type TierRow struct {
 	Detail    string // how many facets, and until when they are cut
 	Angle     facets.Angle
 	Own       bool // the plan gives the angle; else the solver finds it and it cannot be set
-	Slides    bool // a slider makes sense: neither the table nor an upright girdle
+	Slides    bool // the angle is to be set: not that of a table, girdle or culet
 	Low, High facets.Angle
 	Ticks     []Tick // critical angles within the slider's range, pavilion only
 }
@@ -48,7 +48,7 @@ func (l *tierList) rows(plan *facets.Plan, stone *facets.Stone, ticks []Tick) []
 		if !t.HasAngle {
 			row.Angle = foundAngle(stone, t.Name)
 		}
-		row.Slides = row.Own && (t.Side == facets.Pavilion || t.Side == facets.Crown)
+		row.Slides = row.Own && (t.Side == facets.Pavilion || t.Side == facets.Crown) && t.Stop.Rule != facets.StopCulet
 		if row.Slides {
 			var marks []Tick
 			if t.Side == facets.Pavilion {

@@ -4,7 +4,9 @@ import (
 	"fmt"
 	"math"
 	"strconv"
+	"strings"
 
+	"pavilight/gems"
 	"pavilight/trace"
 )
 
@@ -16,7 +18,7 @@ func QuantityName(q trace.Quantity) string {
 	case trace.Returned:
 		return "Light return"
 	case trace.Head:
-		return "Viewer's head"
+		return "Head"
 	case trace.Leaked:
 		return "Leakage"
 	case trace.Absorbed:
@@ -57,7 +59,7 @@ type Heading struct {
 // Heading returns what stands above a column.
 func (l *Look) Heading(column int) Heading {
 	m := l.Media[column]
-	h := Heading{Medium: m.Name}
+	h := Heading{Medium: shortName(m)}
 	if l.Frame == nil || column >= len(l.Frame.Result.Columns) || l.Frame.Media[column] != m {
 		return h
 	}
@@ -71,10 +73,20 @@ func (l *Look) Heading(column int) Heading {
 	return h
 }
 
+// shortName names a material by its key, which is shorter than its name.
+func shortName(m *gems.Material) string {
+	if m.Key == "" {
+		return m.Name
+	}
+	words := strings.ReplaceAll(m.Key, "-", " ")
+	return strings.ToUpper(words[:1]) + words[1:]
+}
+
 // LedgerRow is one line of the ledger under the maps.
 type LedgerRow struct {
 	Name  string
 	Entry trace.Quantity
+	Main  bool // what one looks for first
 	Area  bool // an area of the picture, not one of the six entries
 	Cells []LedgerCell
 }
@@ -96,7 +108,7 @@ func (l *Look) Ledger() []LedgerRow {
 	columns := l.Frame.Result.Columns
 	var rows []LedgerRow
 	for _, q := range append(Quantities(), trace.Unresolved) {
-		row := LedgerRow{Name: QuantityName(q), Entry: q}
+		row := LedgerRow{Name: QuantityName(q), Entry: q, Main: q == trace.Returned || q == trace.Leaked}
 		matters := q != trace.Unresolved && q != trace.Absorbed
 		for i := range columns {
 			c := cell(q.Of(columns[i].Ledger), q.Of(columns[i].StandardError))
@@ -120,7 +132,7 @@ func cell(share, standardError float64) LedgerCell {
 	return LedgerCell{
 		Share:       share,
 		Value:       strconv.FormatFloat(share, 'f', 4, 64),
-		Error:       "±" + strconv.FormatFloat(standardError, 'f', 4, 64),
+		Error:       "±" + strconv.FormatFloat(math.Ceil(standardError*1e4)/1e4, 'f', 4, 64), // never told smaller than it is
 		Significant: share >= naught,
 	}
 }

@@ -1,0 +1,216 @@
+package ui
+
+import (
+	"io/fs"
+	"os"
+	"path/filepath"
+	"strings"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/container"
+	"fyne.io/fyne/v2/dialog"
+	"fyne.io/fyne/v2/storage"
+	"fyne.io/fyne/v2/widget"
+
+	"pavilight/app/model"
+	"pavilight/testdata"
+)
+
+// open reads the plan at path; if it cannot be had the window keeps what it has.
+func (w *window) open(path string) {
+	w.commitTyping()
+	w.bench.Open(path, func(err error) {
+		if err != nil {
+			w.explain(filepath.Base(path)+" cannot be opened", err)
+			w.tell("refused")
+			return
+		}
+		w.files.keepRecent(w.bench.Doc.Path)
+		w.afterOpening()
+	})
+}
+
+func (w *window) openSample(name string) {
+	w.commitTyping()
+	text, err := fs.ReadFile(testdata.Plans(), name)
+	if err == nil {
+		err = w.bench.OpenText(text, name)
+	}
+	if err != nil {
+		w.explain("The sample "+name+" cannot be opened", err)
+		return
+	}
+	w.afterOpening()
+}
+
+func (w *window) afterOpening() {
+	w.enter(lookRoom)
+	w.list.scroll.ScrollToTop()
+	w.say(nil)
+	w.refreshMenu()
+	w.tell("opened")
+}
+
+// commitTyping takes over what is being typed in a field.
+func (w *window) commitTyping() {
+	if f, ok := w.win.Canvas().Focused().(*numberField); ok {
+		f.settle()
+	}
+}
+
+// explain tells what went wrong, fault by fault, and that nothing is lost.
+func (w *window) explain(title string, err error) {
+	text := widget.NewLabel(strings.Join(model.InWords(err), "\n\n"))
+	text.Wrapping = fyne.TextWrapWord
+	text.Selectable = true
+	keeps := newWrapped(colourDim, "text")
+	keeps.setText("The stone that was open stays as it is.")
+	scroll := container.NewVScroll(text)
+	scroll.SetMinSize(fyne.NewSize(min(560, w.win.Canvas().Size().Width-120), 170))
+	d := dialog.NewCustom(title, "Close", container.NewBorder(nil,
+		container.NewGridWrap(fyne.NewSize(400, 24), keeps), nil, nil, scroll), w.win)
+	d.Show()
+}
+
+// openDialog asks which plan to open.
+func (w *window) openDialog() {
+	w.unlessUnsaved("open another plan", func() {
+		d := dialog.NewFileOpen(func(r fyne.URIReadCloser, err error) {
+			if err != nil {
+				w.explain("The file cannot be opened", err)
+				return
+			}
+			if r == nil {
+				return // cancelled
+			}
+			path := r.URI().Path()
+			r.Close()
+			w.open(path)
+		}, w.win)
+		d.SetFilter(storage.NewExtensionFileFilter([]string{".toml"}))
+		d.SetTitleText("Open a plan")
+		w.showFileDialog(d)
+	})
+}
+
+func (w *window) showFileDialog(d *dialog.FileDialog) {
+	if folder, err := storage.ListerForURI(storage.NewFileURI(w.folder())); err == nil {
+		d.SetLocation(folder)
+	}
+	size := w.win.Canvas().Size()
+	d.Resize(fyne.NewSize(min(900, size.Width*0.9), min(620, size.Height*0.9)))
+	d.Show()
+}
+
+// folder is where the plan lies, else where the last one did, else the user's own.
+func (w *window) folder() string {
+	if p := w.bench.Doc.Path; p != "" {
+		return filepath.Dir(p)
+	}
+	for _, p := range w.files.recent() {
+		if exists(filepath.Dir(p)) {
+			return filepath.Dir(p)
+		}
+	}
+	if home, err := os.UserHomeDir(); err == nil {
+		return home
+	}
+	return "."
+}
+
+// save writes the plan to its file, or asks for one if it has none.
+func (w *window) save() { w.saveThen(func() {}) }
+
+func (w *window) saveThen(then func()) {
+	w.commitTyping()
+	if w.bench.Doc.Path == "" {
+		w.saveAsThen(then)
+		return
+	}
+	w.write(w.bench.Doc.Path, then)
+}
+
+func (w *window) saveAs() { w.commitTyping(); w.saveAsThen(func() {}) }
+
+// saveAsThen asks for a file and writes the plan to it.
+func (w *window) saveAsThen(then func()) {
+	d := dialog.NewFileSave(func(f fyne.URIWriteCloser, err error) {
+		if err != nil {
+			w.explain("The plan cannot be saved there", err)
+			return
+		}
+		if f == nil {
+			return // cancelled
+		}
+		path := f.URI().Path()
+		f.Close() // nothing was opened: see writeLater
+		if filepath.Ext(path) == "" {
+			path += ".toml"
+		}
+		w.write(path, then)
+	}, w.win)
+	d.SetFileName(w.bench.Doc.FileName())
+	d.SetFilter(storage.NewExtensionFileFilter([]string{".toml"}))
+	d.SetTitleText("Save the plan as")
+	w.showFileDialog(d)
+}
+
+func (w *window) write(path string, then func()) {
+	if err := w.bench.Save(path); err != nil {
+		w.explain("The plan was not saved", err)
+		w.tell("refused")
+		return
+	}
+	w.files.keepRecent(path)
+	w.refreshMenu()
+	w.report("Saved as " + path)
+	w.tell("saved")
+	then()
+}
+
+// dropped takes files that were dropped on the window.
+func (w *window) dropped(_ fyne.Position, uris []fyne.URI) {
+	if len(uris) == 0 {
+		return
+	}
+	path := uris[0].Path()
+	if len(uris) > 1 {
+		w.report("Several files were dropped; the first is opened.")
+	}
+	w.unlessUnsaved("open "+filepath.Base(path), func() { w.open(path) })
+}
+
+// unlessUnsaved does what would lose unsaved work, but asks before it if there is any.
+func (w *window) unlessUnsaved(what string, do func()) {
+	w.commitTyping()
+	if !w.bench.Doc.Modified() {
+		do()
+		return
+	}
+	var d *dialog.CustomDialog
+	choice := func(label string, importance widget.Importance, then func()) *widget.Button {
+		b := widget.NewButton(label, func() { d.Hide(); then() })
+		b.Importance = importance
+		return b
+	}
+	text := widget.NewLabel("“" + strings.TrimSuffix(w.bench.Doc.Title(), "*") + "” has changes that are not saved.\nSave them before you " + what + "?")
+	d = dialog.NewCustomWithoutButtons("Unsaved changes", text, w.win)
+	d.SetButtons([]fyne.CanvasObject{
+		choice("Cancel", widget.MediumImportance, func() {}),
+		choice("Discard", widget.MediumImportance, do),
+		choice("Save", widget.HighImportance, func() { w.saveThen(do) }),
+	})
+	d.Show()
+	w.tell("asked")
+}
+
+// requestClose closes the window, but asks first if work would be lost.
+func (w *window) requestClose() {
+	w.unlessUnsaved("leave", w.close)
+}
+
+func (w *window) close() {
+	w.files.keepWindowSize(w.win.Canvas().Size())
+	w.bench.Look.Close()
+	w.win.Close()
+}

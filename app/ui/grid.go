@@ -1,0 +1,279 @@
+package ui
+
+import (
+	"image"
+	"image/color"
+	"strconv"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/container"
+	"fyne.io/fyne/v2/theme"
+
+	"pavilight/app/model"
+	"pavilight/gems"
+	"pavilight/trace"
+)
+
+// columns is how many surroundings stand side by side.
+const columns = 3
+
+// grid is the heart of the Look room: a column a surrounding, two rows of maps, and
+// the ledger under each column.
+type grid struct {
+	bench *model.Bench
+
+	box      *fyne.Container
+	media    [columns]*chooser
+	indices  [columns]*line
+	critical [columns]*line
+	row      [model.Rows]*chooser
+	meaning  [model.Rows]*wrapped
+	maps     [model.Rows][columns]*mapView
+	scales   [model.Rows]*scaleBar
+	bars     [columns]*shareBar
+	ledger   ledger
+	strip    fyne.CanvasObject // below the ledger; may be nil
+
+	pixels   int // of a map's edge on the screen, as last asked for
+	onPixels func(int)
+}
+
+func newGrid(bench *model.Bench) *grid {
+	g := &grid{bench: bench}
+	g.box = container.NewWithoutLayout() // until all is in it
+	for j := range columns {
+		g.media[j] = newChooser(theme.SizeNameSubHeadingText, func() []*fyne.MenuItem { return g.mediaItems(j) })
+		g.indices[j] = newLine(colourDim, theme.SizeNameText)
+		g.critical[j] = newLine(colourDim, theme.SizeNameText)
+		g.add(g.media[j], g.indices[j], g.critical[j])
+	}
+	for i := range model.Rows {
+		g.row[i] = newChooser(theme.SizeNameText, func() []*fyne.MenuItem { return g.quantityItems(i) })
+		g.meaning[i] = newWrapped(colourDim, theme.SizeNameCaptionText)
+		g.scales[i] = newScaleBar()
+		g.add(g.row[i], g.meaning[i])
+		for j := range columns {
+			g.maps[i][j] = newMapView(bench.Look.Point, bench.Look.PointAway)
+			g.add(g.maps[i][j])
+		}
+		g.add(g.scales[i])
+	}
+	for j := range columns {
+		g.bars[j] = newShareBar()
+		g.add(g.bars[j])
+	}
+	g.ledger.addTo(g.box)
+	g.box.Layout = g
+	g.refreshAll()
+	return g
+}
+
+func (g *grid) add(objects ...fyne.CanvasObject) {
+	for _, o := range objects {
+		g.box.Add(o)
+	}
+}
+
+// mediaItems lists the surroundings that a column can take.
+func (g *grid) mediaItems(column int) []*fyne.MenuItem {
+	var items []*fyne.MenuItem
+	for _, m := range gems.Surroundings() {
+		if m.Group != gems.Gas && m.Group != gems.Liquid {
+			continue
+		}
+		item := fyne.NewMenuItem(m.Name, func() { g.bench.SetMedium(column, m) })
+		item.Checked = m.Key == g.bench.Look.Media[column].Key
+		items = append(items, item)
+	}
+	return items
+}
+
+// quantityItems lists what a row can show.
+func (g *grid) quantityItems(row int) []*fyne.MenuItem {
+	var items []*fyne.MenuItem
+	for _, q := range model.Quantities() {
+		item := fyne.NewMenuItem(model.QuantityName(q), func() { g.bench.Look.SetRow(row, q); g.refreshHeadings() })
+		item.Checked = q == g.bench.Look.Row[row]
+		items = append(items, item)
+	}
+	return items
+}
+
+func (g *grid) refreshAll() {
+	g.refreshHeadings()
+	g.refreshMaps()
+	g.refreshLedger()
+}
+
+func (g *grid) refreshHeadings() {
+	for j := range columns {
+		h := g.bench.Look.Heading(j)
+		g.media[j].setText(h.Medium)
+		g.indices[j].setText(h.Index)
+		g.critical[j].setText(h.Critical)
+	}
+	for i := range model.Rows {
+		q := g.bench.Look.Row[i]
+		g.row[i].setText(model.QuantityName(q))
+		g.meaning[i].setText(model.QuantityMeaning(q))
+		g.scales[i].show(g.bench.Look.ColourMap(i))
+	}
+	g.box.Refresh()
+}
+
+// refreshMaps puts the newest pictures on the screen.
+func (g *grid) refreshMaps() {
+	f := g.bench.Look.Frame
+	for i := range model.Rows {
+		for j := range columns {
+			view := g.maps[i][j]
+			var img image.Image
+			if f != nil && j < len(f.Pictures[i]) {
+				img = f.Pictures[i][j]
+			}
+			if view.picture.Image != img {
+				view.picture.Image = img
+				view.picture.Refresh()
+			}
+		}
+	}
+	g.refreshPointer()
+}
+
+// refreshPointer moves the cross-hair in all maps and tells the numbers under it.
+func (g *grid) refreshPointer() {
+	p := g.bench.Look.Pointer
+	for i := range model.Rows {
+		var marks []float64
+		for j := range columns {
+			text := ""
+			if v, ok := g.bench.Look.UnderPointer(i, j); ok {
+				text = strconv.FormatFloat(v, 'f', 3, 64)
+				marks = append(marks, v)
+			}
+			g.maps[i][j].show(p.Over, p.X, p.Y, text)
+		}
+		g.scales[i].mark(marks)
+	}
+}
+
+func (g *grid) refreshLedger() {
+	rows := g.bench.Look.Ledger()
+	if g.ledger.show(rows) {
+		g.box.Refresh()
+	}
+	for j := range columns {
+		var parts []sharePart
+		for _, row := range rows {
+			if !row.Area && j < len(row.Cells) {
+				parts = append(parts, sharePart{row.Cells[j].Share, entryColour(row.Entry)})
+			}
+		}
+		g.bars[j].show(parts)
+	}
+}
+
+// entryColour is the colour of an entry in the stacked bar and beside its name.
+// Lightness alone tells neighbours apart.
+func entryColour(q trace.Quantity) color.NRGBA {
+	switch q {
+	case trace.Returned:
+		return rgb(0xe9, 0xd3, 0x4c)
+	case trace.Leaked:
+		return rgb(0x2f, 0x6f, 0x9f)
+	case trace.Head:
+		return rgb(0xa8, 0xa8, 0xa8)
+	case trace.Surface:
+		return rgb(0x5c, 0x5c, 0x5c)
+	case trace.Absorbed:
+		return rgb(0xb5, 0x6b, 0x53)
+	}
+	return rgb(0xff, 0xff, 0xff)
+}
+
+// Measures of the grid.
+const (
+	gutter    = 100 // left of the maps, for names
+	scaleWide = 40  // right of the maps, for the scale
+	between   = 10  // columns
+	beneath   = 8   // a row of maps
+	mostEdge  = 420 // of a map
+)
+
+// MinSize is what the grid can be squeezed to.
+func (g *grid) MinSize([]fyne.CanvasObject) fyne.Size {
+	return fyne.NewSize(gutter+scaleWide+columns*(110+between), g.headHeight()+2*(110+beneath)+g.ledger.height()+g.barHeight())
+}
+
+func (g *grid) headHeight() float32 {
+	return g.media[0].MinSize().Height + g.critical[0].MinSize().Height + 8
+}
+func (g *grid) barHeight() float32 { return 16 }
+
+// Layout gives the maps the largest squares that width and height allow.
+func (g *grid) Layout(_ []fyne.CanvasObject, size fyne.Size) {
+	head, foot := g.headHeight(), g.ledger.height()+g.barHeight()
+	var stripHeight float32
+	if g.strip != nil && g.strip.Visible() {
+		stripHeight = g.strip.MinSize().Height
+	}
+	wide := (size.Width-gutter-scaleWide)/columns - between
+	high := (size.Height-head-foot-stripHeight)/model.Rows - beneath
+	edge := max(60, min(wide, high, mostEdge))
+
+	// What the maps leave free goes left and right of them, and between the columns.
+	pitch := edge + between
+	if spare := size.Width - gutter - scaleWide - columns*pitch; spare > 0 {
+		pitch += min(36, spare/(columns+1))
+	}
+	left := max(0, (size.Width-gutter-scaleWide-columns*pitch)/2)
+	x := func(j int) float32 { return left + gutter + float32(j)*pitch }
+
+	for j := range columns {
+		name := g.media[j].MinSize()
+		name.Width = min(name.Width, edge)
+		place(g.media[j], x(j)-3, 0, name.Width, name.Height)
+		place(g.indices[j], x(j)+name.Width+4, 2, max(0, edge-name.Width-4), name.Height)
+		place(g.critical[j], x(j), name.Height, edge, g.critical[j].MinSize().Height)
+	}
+	y := head
+	for i := range model.Rows {
+		name := g.row[i].MinSize()
+		place(g.row[i], left-3, y, min(name.Width, gutter), name.Height)
+		place(g.meaning[i], left, y+name.Height+2, gutter-12, max(0, edge-name.Height-2))
+		for j := range columns {
+			place(g.maps[i][j], x(j), y, edge, edge)
+		}
+		place(g.scales[i], x(columns-1)+edge+10, y, scaleWide, edge)
+		y += edge + beneath
+	}
+	for j := range columns {
+		place(g.bars[j], x(j), y+2, edge, g.barHeight()-6)
+	}
+	g.ledger.layout(left, y+g.barHeight(), gutter, func(j int) float32 { return x(j) }, edge)
+	if stripHeight > 0 {
+		place(g.strip, left, size.Height-stripHeight, size.Width-left, stripHeight)
+	}
+	g.tellPixels(edge)
+}
+
+func place(o fyne.CanvasObject, x, y, width, height float32) {
+	o.Move(fyne.NewPos(x, y))
+	o.Resize(fyne.NewSize(width, height))
+}
+
+// tellPixels asks for maps of the screen's own resolution.
+func (g *grid) tellPixels(edge float32) {
+	scale := float32(1)
+	if c := fyne.CurrentApp().Driver().CanvasForObject(g.box); c != nil {
+		scale = c.Scale()
+	}
+	if px := int(edge*scale + 0.5); px != g.pixels && px > 0 {
+		g.pixels = px
+		if g.onPixels != nil {
+			g.onPixels(px)
+		}
+	}
+}
+
+var _ fyne.Layout = (*grid)(nil)

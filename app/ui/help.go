@@ -1,0 +1,87 @@
+package ui
+
+import (
+	"fmt"
+	"runtime"
+	"runtime/debug"
+	"strings"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/container"
+	"fyne.io/fyne/v2/dialog"
+	"fyne.io/fyne/v2/theme"
+	"fyne.io/fyne/v2/widget"
+)
+
+// about says what the program is, which versions it runs on and what it is not.
+func (w *window) about() {
+	text := widget.NewLabel(strings.Join([]string{
+		"Where the light in a faceted gemstone goes, and how to cut it so that it comes back.",
+		"A map is a model. It grades no stone and replaces no laboratory. Not modelled: inclusions, haze, " +
+			"colour zones, fluorescence, fracture filling.",
+		versions(),
+	}, "\n\n"))
+	text.Wrapping = fyne.TextWrapWord
+	scroll := container.NewVScroll(text)
+	scroll.SetMinSize(fyne.NewSize(440, 240))
+	dialog.ShowCustom("About Pavilight", "Close", scroll, w.win)
+}
+
+// versions lists the program's own version and those of the libraries that matter.
+func versions() string {
+	lines := []string{}
+	version, revision := "development build", ""
+	info, ok := debug.ReadBuildInfo()
+	if ok {
+		if v := info.Main.Version; v != "" && v != "(devel)" {
+			version = v
+		}
+		for _, s := range info.Settings {
+			if s.Key == "vcs.revision" && len(s.Value) >= 12 {
+				revision = s.Value[:12]
+			}
+		}
+	}
+	lines = append(lines, strings.TrimSpace("Pavilight "+version+" "+revision))
+	lines = append(lines, fmt.Sprintf("%s on %s/%s", runtime.Version(), runtime.GOOS, runtime.GOARCH))
+	if ok {
+		for _, d := range info.Deps {
+			switch d.Path {
+			case "fyne.io/fyne/v2", "github.com/go-gl/mathgl", "gonum.org/v1/gonum", "github.com/pelletier/go-toml/v2":
+				lines = append(lines, d.Path+" "+d.Version)
+			}
+		}
+	}
+	return strings.Join(lines, "\n")
+}
+
+// diagnostics is what helps to find a fault of the program.
+func (w *window) diagnostics() string {
+	s := w.bench.Look.Settings()
+	size := w.win.Canvas().Size()
+	return fmt.Sprintf("%s\nwindow %.0f x %.0f, scale %.2f, text %.1f, theme %s\nprocessors %d, tracing on %d\nmaps of %d pixels\nplan %q: %s\nstate: %s\n",
+		versions(), size.Width, size.Height, w.win.Canvas().Scale(), w.files.textScale(), w.files.brightness(),
+		runtime.NumCPU(), s.Workers, s.Pixels, w.bench.Doc.Plan().Name, strings.Join(w.bench.Troubles(), "; "), w.bench.Look.Status())
+}
+
+func (w *window) copyDiagnostics() {
+	w.app.Clipboard().SetContent(w.diagnostics())
+	w.report("The diagnostics are on the clipboard.")
+}
+
+// firstSteps gives three hints.
+func (w *window) firstSteps() {
+	hint := func(head, body string) fyne.CanvasObject {
+		text := widget.NewLabel(body)
+		text.Wrapping = fyne.TextWrapWord
+		return container.NewBorder(newWord(theme.ColorNameForeground, theme.SizeNameText, head).bold(), nil, nil, nil, text)
+	}
+	all := container.NewVBox(
+		hint("Move a slider", "Every tier has its angle at the left. All six maps follow while the slider moves, then they refine. "+
+			"The ticks a, w and o on a pavilion tier are the critical angles in air, water and oil: below its tick a facet begins to leak."),
+		hint("Point at a map", "The numbers under the pointer appear in all six maps at once. Above, light that comes back; below, light that leaks. "+
+			"The first column is the stone in air, the others are the stone in water and in oil."),
+		hint("Open your own plan", "Drop a plan file on the window, or take one of the samples from the File menu. What you change can be undone, step by step."),
+	)
+	dialog.ShowCustom("First steps", "Start", container.NewGridWrap(fyne.NewSize(520, 280), all), w.win)
+}

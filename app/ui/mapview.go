@@ -1,0 +1,201 @@
+package ui
+
+import (
+	"image/color"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/canvas"
+	"fyne.io/fyne/v2/driver/desktop"
+	"fyne.io/fyne/v2/theme"
+	"fyne.io/fyne/v2/widget"
+)
+
+// mapView shows one map in a square, with the cross-hair and the number under the
+// pointer, wherever among the maps the pointer is.
+type mapView struct {
+	widget.BaseWidget
+
+	picture *canvas.Image
+	point   func(x, y float64) // shares of the picture from its top left
+	away    func()
+
+	cross   fyne.Position // shares; shown if crossed
+	crossed bool
+	value   string // shown in the corner while crossed; empty beside the stone
+	focused bool
+}
+
+var (
+	_ desktop.Hoverable  = (*mapView)(nil)
+	_ desktop.Cursorable = (*mapView)(nil)
+	_ desktop.Mouseable  = (*mapView)(nil)
+	_ fyne.Focusable     = (*mapView)(nil)
+)
+
+func newMapView(point func(x, y float64), away func()) *mapView {
+	m := &mapView{picture: &canvas.Image{}, point: point, away: away}
+	m.picture.ScaleMode = canvas.ImageScaleFastest
+	m.picture.FillMode = canvas.ImageFillStretch // the layout keeps it square
+	m.ExtendBaseWidget(m)
+	return m
+}
+
+// show moves the cross-hair, or takes it away.
+func (m *mapView) show(crossed bool, x, y float64, value string) {
+	cross := fyne.NewPos(float32(x), float32(y))
+	if crossed == m.crossed && cross == m.cross && value == m.value {
+		return
+	}
+	m.crossed, m.cross, m.value = crossed, cross, value
+	m.Refresh()
+}
+
+// square returns where the picture lies within the widget.
+func (m *mapView) square() (fyne.Position, float32) {
+	size := m.Size()
+	edge := min(size.Width, size.Height)
+	return fyne.NewPos((size.Width-edge)/2, (size.Height-edge)/2), edge
+}
+
+func (m *mapView) ask(at fyne.Position) {
+	corner, edge := m.square()
+	if edge <= 0 {
+		return
+	}
+	x, y := float64((at.X-corner.X)/edge), float64((at.Y-corner.Y)/edge)
+	if x < 0 || y < 0 || x > 1 || y > 1 {
+		m.away()
+		return
+	}
+	m.point(x, y)
+}
+
+// MouseIn asks the maps.
+func (m *mapView) MouseIn(e *desktop.MouseEvent) { m.ask(e.Position) }
+
+// MouseMoved asks the maps.
+func (m *mapView) MouseMoved(e *desktop.MouseEvent) { m.ask(e.Position) }
+
+// MouseOut ends asking.
+func (m *mapView) MouseOut() { m.away() }
+
+// MouseDown takes the focus, so that the arrow keys move the cross-hair.
+func (m *mapView) MouseDown(e *desktop.MouseEvent) {
+	if c := fyne.CurrentApp().Driver().CanvasForObject(m); c != nil {
+		c.Focus(m)
+	}
+	m.ask(e.Position)
+}
+
+// MouseUp is not used.
+func (m *mapView) MouseUp(*desktop.MouseEvent) {}
+
+// Cursor is a cross-hair.
+func (m *mapView) Cursor() desktop.Cursor { return desktop.CrosshairCursor }
+
+// TypedKey moves the cross-hair by a fiftieth of the map; Escape takes it away.
+func (m *mapView) TypedKey(e *fyne.KeyEvent) {
+	const step = 0.02
+	at := m.cross
+	if !m.crossed {
+		at = fyne.NewPos(0.5, 0.5)
+	}
+	switch e.Name {
+	case fyne.KeyLeft:
+		at.X -= step
+	case fyne.KeyRight:
+		at.X += step
+	case fyne.KeyUp:
+		at.Y -= step
+	case fyne.KeyDown:
+		at.Y += step
+	case fyne.KeyEscape:
+		m.away()
+		return
+	default:
+		return
+	}
+	m.point(float64(min(1, max(0, at.X))), float64(min(1, max(0, at.Y))))
+}
+
+// TypedRune is not used.
+func (m *mapView) TypedRune(rune) {}
+
+// FocusGained shows the frame.
+func (m *mapView) FocusGained() { m.focused = true; m.Refresh() }
+
+// FocusLost hides the frame.
+func (m *mapView) FocusLost() { m.focused = false; m.Refresh() }
+
+// CreateRenderer builds the picture, the cross-hair and the number.
+func (m *mapView) CreateRenderer() fyne.WidgetRenderer {
+	r := &mapViewRenderer{m: m, frame: canvas.NewRectangle(color.Transparent),
+		plate: canvas.NewRectangle(color.Transparent), value: canvas.NewText("", color.Transparent)}
+	for i := range r.hair {
+		r.hair[i] = canvas.NewRectangle(color.Transparent)
+	}
+	r.plate.CornerRadius = 3
+	r.value.TextStyle.Bold = true
+	r.objects = []fyne.CanvasObject{m.picture, r.hair[0], r.hair[1], r.hair[2], r.hair[3], r.plate, r.value, r.frame}
+	r.Refresh()
+	return r
+}
+
+type mapViewRenderer struct {
+	m            *mapView
+	hair         [4]*canvas.Rectangle // dark and broad below, light and thin above
+	frame, plate *canvas.Rectangle
+	value        *canvas.Text
+	objects      []fyne.CanvasObject
+}
+
+func (r *mapViewRenderer) Destroy()                     {}
+func (r *mapViewRenderer) Objects() []fyne.CanvasObject { return r.objects }
+func (r *mapViewRenderer) MinSize() fyne.Size           { return fyne.NewSquareSize(96) }
+
+func (r *mapViewRenderer) Layout(fyne.Size) {
+	corner, edge := r.m.square()
+	r.m.picture.Move(corner)
+	r.m.picture.Resize(fyne.NewSquareSize(edge))
+	r.frame.Move(corner)
+	r.frame.Resize(fyne.NewSquareSize(edge))
+	x, y := corner.X+r.m.cross.X*edge, corner.Y+r.m.cross.Y*edge
+	for i, broad := range []float32{3, 1} {
+		across, down := r.hair[2*i], r.hair[2*i+1]
+		across.Move(fyne.NewPos(corner.X, y-broad/2))
+		across.Resize(fyne.NewSize(edge, broad))
+		down.Move(fyne.NewPos(x-broad/2, corner.Y))
+		down.Resize(fyne.NewSize(broad, edge))
+	}
+	size := r.value.MinSize()
+	// The number keeps to the upper left corner, and gives way to the pointer.
+	at := corner.AddXY(3, 3)
+	if r.m.cross.X < 0.35 && r.m.cross.Y < 0.25 {
+		at = corner.AddXY(edge-size.Width-13, 3)
+	}
+	r.plate.Move(at)
+	r.plate.Resize(size.AddWidthHeight(10, 2))
+	r.value.Move(at.AddXY(5, 1))
+	r.value.Resize(size)
+}
+
+func (r *mapViewRenderer) Refresh() {
+	m := r.m
+	for i, h := range r.hair {
+		h.FillColor = color.NRGBA{0, 0, 0, 110}
+		if i >= 2 {
+			h.FillColor = color.NRGBA{255, 255, 255, 235}
+		}
+		h.Hidden = !m.crossed
+	}
+	r.value.Text, r.value.TextSize = m.value, theme.TextSize()
+	r.value.Color, r.plate.FillColor = themed(theme.ColorNameForeground), themed(colourPane)
+	r.value.Hidden = !m.crossed || m.value == ""
+	r.plate.Hidden = r.value.Hidden
+	r.frame.StrokeWidth, r.frame.StrokeColor = 0, color.Transparent
+	if m.focused {
+		r.frame.StrokeWidth, r.frame.StrokeColor = 2, themed(theme.ColorNameFocus)
+	}
+	r.Layout(m.Size())
+	canvas.Refresh(m)
+}

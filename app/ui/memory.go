@@ -1,0 +1,94 @@
+package ui
+
+import (
+	"os"
+	"slices"
+
+	"fyne.io/fyne/v2"
+)
+
+// fileMemory is what the program remembers from one run to the next. Everything
+// read back is checked: the file may have been damaged or edited.
+type fileMemory struct{ prefs fyne.Preferences }
+
+// Keys of the preferences.
+const (
+	widthKey     = "window.width"
+	heightKey    = "window.height"
+	themeKey     = "view.theme"
+	scaleKey     = "view.text"
+	planPaneKey  = "view.plan"
+	stonePaneKey = "view.stone"
+	recentKey    = "files.recent"
+	hintsKey     = "hints.seen"
+)
+
+// The size of the window when it is opened for the first time.
+const (
+	usualWidth  = 1360
+	usualHeight = 860
+)
+
+func (m fileMemory) windowSize() fyne.Size {
+	sound := func(v float64, usual, least, most float32) float32 {
+		if f := float32(v); f >= least && f <= most { // false for NaN
+			return f
+		}
+		return usual
+	}
+	return fyne.NewSize(sound(m.prefs.Float(widthKey), usualWidth, 640, 8000),
+		sound(m.prefs.Float(heightKey), usualHeight, 480, 8000))
+}
+
+func (m fileMemory) keepWindowSize(s fyne.Size) {
+	m.prefs.SetFloat(widthKey, float64(s.Width))
+	m.prefs.SetFloat(heightKey, float64(s.Height))
+}
+
+func (m fileMemory) brightness() brightness {
+	switch b := brightness(m.prefs.String(themeKey)); b {
+	case inLight, inDark:
+		return b
+	}
+	return asSystem
+}
+
+func (m fileMemory) textScale() float32 { return float32(m.prefs.FloatWithFallback(scaleKey, 1)) }
+
+// pane reports whether a side pane is shown: as the user decided, else as usual.
+func (m fileMemory) pane(key string, usual bool) bool {
+	switch m.prefs.String(key) {
+	case "shown":
+		return true
+	case "folded":
+		return false
+	}
+	return usual
+}
+
+func (m fileMemory) keepPane(key string, shown bool) {
+	m.prefs.SetString(key, map[bool]string{true: "shown", false: "folded"}[shown])
+}
+
+// mostRecent is how many files are remembered.
+const mostRecent = 8
+
+func (m fileMemory) recent() []string {
+	list := m.prefs.StringList(recentKey)
+	return list[:min(len(list), mostRecent)]
+}
+
+func (m fileMemory) keepRecent(path string) {
+	list := slices.DeleteFunc(slices.Clone(m.recent()), func(p string) bool { return p == path })
+	list = append([]string{path}, list...)
+	m.prefs.SetStringList(recentKey, list[:min(len(list), mostRecent)])
+}
+
+func (m fileMemory) forgetRecent(path string) {
+	m.prefs.SetStringList(recentKey, slices.DeleteFunc(slices.Clone(m.recent()), func(p string) bool { return p == path }))
+}
+
+func exists(path string) bool {
+	_, err := os.Stat(path)
+	return err == nil
+}

@@ -1,0 +1,162 @@
+package ui
+
+import (
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/driver/desktop"
+	"fyne.io/fyne/v2/widget"
+)
+
+// numberField takes one number. Enter and leaving the field commit what was
+// typed; Escape takes it back; arrow keys and, while it has the focus, the wheel
+// step it (ten times as far with Shift, a tenth with Alt). What cannot be read
+// stays in the field, marked, with the reason told, and the plan keeps its number.
+type numberField struct {
+	widget.Entry
+
+	read  func(text string) (float64, error)
+	write func(float64) string
+	step  float64
+
+	// commit takes a number that was read, and answers why it cannot be had.
+	commit func(float64) error
+	// trouble is told why the text was refused, and nil once all is well.
+	trouble func(error)
+	// gained is told when the field takes the focus; may be nil.
+	gained func()
+
+	value   float64 // the last that was shown or committed
+	focused bool
+}
+
+var (
+	_ fyne.Scrollable   = (*numberField)(nil)
+	_ fyne.Focusable    = (*numberField)(nil)
+	_ desktop.Keyable   = (*numberField)(nil)
+	_ fyne.Shortcutable = (*numberField)(nil)
+)
+
+func newNumberField(read func(string) (float64, error), write func(float64) string, step float64) *numberField {
+	f := &numberField{read: read, write: write, step: step}
+	f.ExtendBaseWidget(f)
+	f.Scroll = fyne.ScrollNone // never scroll sideways inside the field
+	f.OnSubmitted = func(string) { f.settle() }
+	return f
+}
+
+// show puts a number into the field unless the user is typing another one.
+func (f *numberField) show(v float64) {
+	f.value = v
+	if f.focused && f.pending() {
+		return
+	}
+	f.put(v)
+}
+
+func (f *numberField) put(v float64) {
+	if text := f.write(v); f.Text != text {
+		f.SetText(text)
+	}
+}
+
+// pending reports whether the text is not the number that the field stands for.
+func (f *numberField) pending() bool { return f.Text != f.write(f.value) }
+
+// settle commits what was typed, if anything was.
+func (f *numberField) settle() {
+	if !f.pending() {
+		f.tell(nil)
+		return
+	}
+	v, err := f.read(f.Text)
+	if err == nil {
+		err = f.commit(v)
+	}
+	if err == nil {
+		f.value = v
+		f.put(v)
+	}
+	f.tell(err)
+}
+
+// revert takes back what was typed.
+func (f *numberField) revert() {
+	f.put(f.value)
+	f.tell(nil)
+}
+
+func (f *numberField) tell(err error) {
+	f.SetValidationError(err)
+	if f.trouble != nil {
+		f.trouble(err)
+	}
+}
+
+// nudge moves the number by so many steps.
+func (f *numberField) nudge(steps float64) {
+	from := f.value
+	if f.pending() {
+		if v, err := f.read(f.Text); err == nil {
+			from = v
+		}
+	}
+	size := f.step
+	if d, ok := fyne.CurrentApp().Driver().(desktop.Driver); ok {
+		switch mods := d.CurrentKeyModifiers(); {
+		case mods&fyne.KeyModifierShift != 0:
+			size *= 10
+		case mods&fyne.KeyModifierAlt != 0:
+			size /= 10
+		}
+	}
+	v := onStep(from+steps*size, size)
+	if err := f.commit(v); err != nil {
+		f.tell(err)
+		return
+	}
+	f.value = v
+	f.put(v)
+	f.tell(nil)
+}
+
+// TypedKey adds stepping and taking back to what an entry does.
+func (f *numberField) TypedKey(key *fyne.KeyEvent) {
+	switch key.Name {
+	case fyne.KeyUp:
+		f.nudge(1)
+	case fyne.KeyDown:
+		f.nudge(-1)
+	case fyne.KeyEscape:
+		f.revert()
+	default:
+		f.Entry.TypedKey(key)
+	}
+}
+
+// Scrolled steps the number while the field has the focus.
+func (f *numberField) Scrolled(e *fyne.ScrollEvent) {
+	if !f.focused {
+		return
+	}
+	switch {
+	case e.Scrolled.DY > 0:
+		f.nudge(1)
+	case e.Scrolled.DY < 0:
+		f.nudge(-1)
+	}
+}
+
+// FocusGained marks all of the text, so that typing replaces it.
+func (f *numberField) FocusGained() {
+	f.focused = true
+	f.Entry.FocusGained()
+	if f.gained != nil {
+		f.gained()
+	}
+}
+
+// FocusLost commits what was typed.
+func (f *numberField) FocusLost() {
+	f.focused = false
+	f.Entry.FocusLost()
+	f.settle()
+}

@@ -1,0 +1,199 @@
+package ui
+
+import (
+	"image/color"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/canvas"
+	"fyne.io/fyne/v2/theme"
+	"fyne.io/fyne/v2/widget"
+)
+
+// groundWidget is a plain ground in a colour of the theme, which it follows.
+type groundWidget struct {
+	widget.BaseWidget
+	name fyne.ThemeColorName
+}
+
+func newGround(name fyne.ThemeColorName) *groundWidget {
+	g := &groundWidget{name: name}
+	g.ExtendBaseWidget(g)
+	return g
+}
+
+// CreateRenderer builds the rectangle.
+func (g *groundWidget) CreateRenderer() fyne.WidgetRenderer {
+	r := &groundRenderer{g: g, rect: canvas.NewRectangle(color.Transparent)}
+	r.Refresh()
+	return r
+}
+
+type groundRenderer struct {
+	g    *groundWidget
+	rect *canvas.Rectangle
+}
+
+func (r *groundRenderer) Destroy()                     {}
+func (r *groundRenderer) Objects() []fyne.CanvasObject { return []fyne.CanvasObject{r.rect} }
+func (r *groundRenderer) MinSize() fyne.Size           { return fyne.Size{} }
+func (r *groundRenderer) Layout(size fyne.Size)        { r.rect.Resize(size) }
+func (r *groundRenderer) Refresh() {
+	r.rect.FillColor = themed(r.g.name)
+	r.rect.Refresh()
+}
+
+// paneLayout places the plan at the left, the maps in the middle and the stone at
+// the right. Where the window is narrow the stone gives way, unless it was asked for.
+type paneLayout struct {
+	files fileMemory
+}
+
+// Widths of the side panes, and below which width of the window the stone gives way.
+const (
+	planWide    = 272
+	planNarrow  = 250
+	stoneWide   = 262
+	stoneNarrow = 236
+	narrow      = 1180
+	paneGap     = 6
+)
+
+// shown reports which of the side panes are to be seen at this width.
+func (p *paneLayout) shown(width float32) (plan, stone bool) {
+	plan = p.files.pane(planPaneKey, true)
+	stone = p.files.pane(stonePaneKey, width >= narrow)
+	return plan, stone
+}
+
+// MinSize is the least that the middle pane needs beside the plan.
+func (p *paneLayout) MinSize(objects []fyne.CanvasObject) fyne.Size {
+	return fyne.NewSize(planNarrow+paneGap+objects[1].MinSize().Width, objects[1].MinSize().Height)
+}
+
+// Layout gives the side panes their width and the maps the rest.
+func (p *paneLayout) Layout(objects []fyne.CanvasObject, size fyne.Size) {
+	plan, stone := p.shown(size.Width)
+	left, right := float32(planWide), float32(stoneWide)
+	if size.Width < narrow {
+		left, right = planNarrow, stoneNarrow
+	}
+	setVisible(objects[0], plan)
+	setVisible(objects[2], stone)
+	x, width := float32(0), size.Width
+	if plan {
+		place(objects[0], 0, 0, left, size.Height)
+		x, width = left+paneGap, width-left-paneGap
+	}
+	if stone {
+		place(objects[2], size.Width-right, 0, right, size.Height)
+		width -= right + paneGap
+	}
+	place(objects[1], x, 0, max(0, width), size.Height)
+}
+
+func setVisible(o fyne.CanvasObject, visible bool) {
+	if o.Visible() != visible {
+		if visible {
+			o.Show()
+		} else {
+			o.Hide()
+		}
+	}
+}
+
+// headerLayout sets the plan at the left, the rooms in the middle of what the plan
+// leaves, and the progress at the right.
+type headerLayout struct{}
+
+// MinSize asks for the height alone and for as much width as the doors need.
+func (*headerLayout) MinSize(objects []fyne.CanvasObject) fyne.Size {
+	size := fyne.NewSize(0, 0)
+	for _, o := range objects {
+		size.Height = max(size.Height, o.MinSize().Height)
+	}
+	size.Width = objects[1].MinSize().Width + objects[2].MinSize().Width + 200
+	return size
+}
+
+// Layout centres the doors on the window unless left or right press on them.
+func (*headerLayout) Layout(objects []fyne.CanvasObject, size fyne.Size) {
+	left, doors, right := objects[0].MinSize(), objects[1].MinSize(), objects[2].MinSize()
+	const air = 12
+	x := (size.Width - doors.Width) / 2
+	x = max(x, left.Width+air)
+	x = min(x, size.Width-right.Width-air-doors.Width)
+	place(objects[0], 0, (size.Height-left.Height)/2, max(0, min(left.Width, x-air)), left.Height)
+	place(objects[1], x, (size.Height-doors.Height)/2, doors.Width, doors.Height)
+	place(objects[2], size.Width-right.Width, (size.Height-right.Height)/2, right.Width, right.Height)
+}
+
+// squareLayout gives its first object a square of the full width, and the rest a
+// line below.
+type squareLayout struct{}
+
+// MinSize cannot know the width yet: it asks for the square of a pane.
+func (*squareLayout) MinSize(objects []fyne.CanvasObject) fyne.Size {
+	return fyne.NewSize(stoneNarrow, stoneNarrow+objects[1].MinSize().Height+8)
+}
+
+// Layout keeps the square within what it was given.
+func (*squareLayout) Layout(objects []fyne.CanvasObject, size fyne.Size) {
+	below := objects[1].MinSize().Height
+	place(objects[0], 6, 6, max(0, size.Width-12), max(0, size.Height-below-8))
+	place(objects[1], 6, size.Height-below-2, max(0, size.Width-12), below)
+}
+
+// factTable is a list of names and numbers.
+type factTable struct {
+	box  *fyne.Container
+	rows []factRow
+}
+
+type factRow struct{ name, value *line }
+
+func newFactTable() *factTable {
+	t := &factTable{}
+	t.box = &fyne.Container{Layout: t}
+	return t
+}
+
+func (t *factTable) show(facts [][2]string) {
+	changed := len(facts) != len(t.rows)
+	if changed {
+		t.box.RemoveAll()
+		t.rows = nil
+		for range facts {
+			r := factRow{newLine(colourDim, theme.SizeNameText), newLine(theme.ColorNameForeground, theme.SizeNameText)}
+			t.rows = append(t.rows, r)
+			t.box.Add(r.name)
+			t.box.Add(r.value)
+		}
+	}
+	for i, f := range facts {
+		heading := f[1] == ""
+		if t.rows[i].name.style.Bold != heading {
+			t.rows[i].name.style.Bold = heading
+			t.rows[i].name.Refresh()
+		}
+		t.rows[i].name.setText(f[0])
+		t.rows[i].value.setText(f[1])
+	}
+	if changed {
+		t.box.Refresh()
+	}
+}
+
+// MinSize is a line a fact.
+func (t *factTable) MinSize([]fyne.CanvasObject) fyne.Size {
+	return fyne.NewSize(120, float32(len(t.rows))*(lineHeight()+1))
+}
+
+// Layout sets the numbers in one column.
+func (t *factTable) Layout(_ []fyne.CanvasObject, size fyne.Size) {
+	high := lineHeight() + 1
+	const names = 100
+	for i, r := range t.rows {
+		place(r.name, 0, float32(i)*high, names-6, high)
+		place(r.value, names, float32(i)*high, max(0, size.Width-names), high)
+	}
+}

@@ -1,0 +1,82 @@
+//go:build cgo
+
+// Package ui is the program's window. It is the only package beside main that
+// knows the toolkit; what it shows is computed in package model.
+package ui
+
+import (
+	"context"
+	"os"
+	"time"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/app"
+	"fyne.io/fyne/v2/storage/repository"
+
+	"pavilight/app/model"
+	"pavilight/facets"
+	"pavilight/testdata"
+)
+
+// Options say what the window opens with.
+type Options struct {
+	Path string // of a plan; empty for the bundled stone
+}
+
+const appID = "org.pavilight"
+
+// Run opens the window and returns when it was closed. A plan that cannot be opened
+// is told of in the window, which then shows the bundled stone. When ctx is
+// cancelled the window closes; unsaved work is kept for the next start.
+func Run(ctx context.Context, o Options) error {
+	started := time.Now()
+	app.SetMetadata(fyne.AppMetadata{
+		ID: appID, Name: "Pavilight", Version: "0.1.0",
+		Migrations: map[string]bool{"fyneDo": true}, // all of our goroutines come in by post
+	})
+	makeFolders()
+	a := app.NewWithID(appID)
+	if files, err := repository.ForScheme("file"); err == nil {
+		repository.Register("file", writeLater(files))
+	}
+	a.Settings().SetTheme(newGreys(fileMemory{a.Preferences()}.brightness(), fileMemory{a.Preferences()}.textScale()))
+	doc, err := bundledDocument()
+	if err != nil {
+		return err
+	}
+	w, err := newWindow(a, doc, stages(started))
+	if err != nil {
+		return err
+	}
+	a.Lifecycle().SetOnStarted(func() { w.started(o.Path) })
+	stop := context.AfterFunc(ctx, func() { post(w.close) })
+	defer stop()
+	w.win.ShowAndRun()
+	w.bench.Look.Close()
+	return nil
+}
+
+// bundledDocument is the stone that the window opens with when none is named.
+func bundledDocument() (*model.Document, error) {
+	file, err := testdata.Plans().Open(testdata.Bundled)
+	if err != nil {
+		return nil, err
+	}
+	defer file.Close()
+	plan, err := facets.ReadPlan(file, testdata.Bundled)
+	if err != nil {
+		return nil, err
+	}
+	return model.NewDocument(plan, ""), nil
+}
+
+// makeFolders makes the user's folders for settings and caches where a fresh
+// account has none yet; the toolkit expects them. Where that fails the toolkit
+// says so, and the program works without memory.
+func makeFolders() {
+	for _, find := range []func() (string, error){os.UserConfigDir, os.UserCacheDir} {
+		if folder, err := find(); err == nil {
+			os.MkdirAll(folder, 0o700)
+		}
+	}
+}

@@ -1,0 +1,107 @@
+package ui
+
+import (
+	"image"
+	"image/color"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/canvas"
+	"fyne.io/fyne/v2/theme"
+	"fyne.io/fyne/v2/widget"
+
+	"pavilight/app/picture"
+)
+
+// scaleBar is the scale of a row of maps, from 0 below to 1 above, with a pointer
+// at each number under the cross-hair.
+type scaleBar struct {
+	widget.BaseWidget
+	name  string // of the colour map shown
+	strip *canvas.Image
+	marks []float64
+}
+
+func newScaleBar() *scaleBar {
+	s := &scaleBar{strip: &canvas.Image{}}
+	s.strip.ScaleMode = canvas.ImageScaleFastest
+	s.ExtendBaseWidget(s)
+	return s
+}
+
+func (s *scaleBar) show(m *picture.ColourMap) {
+	if m.Name == s.name {
+		return
+	}
+	s.name = m.Name
+	img := image.NewRGBA(image.Rect(0, 0, 1, len(m.Table)))
+	for i, c := range m.Table {
+		img.SetRGBA(0, len(m.Table)-1-i, c)
+	}
+	s.strip.Image = img
+	s.Refresh()
+}
+
+func (s *scaleBar) mark(values []float64) {
+	if len(values) == 0 && len(s.marks) == 0 {
+		return
+	}
+	s.marks = values
+	s.Refresh()
+}
+
+// CreateRenderer builds the strip, its three numbers and the pointers.
+func (s *scaleBar) CreateRenderer() fyne.WidgetRenderer {
+	r := &scaleBarRenderer{s: s}
+	r.objects = []fyne.CanvasObject{s.strip}
+	for i, text := range []string{"1", "0.5", "0"} {
+		r.numbers[i] = canvas.NewText(text, color.Transparent)
+		r.objects = append(r.objects, r.numbers[i])
+	}
+	for i := range r.marks {
+		r.marks[i] = canvas.NewRectangle(color.Transparent)
+		r.objects = append(r.objects, r.marks[i])
+	}
+	r.Refresh()
+	return r
+}
+
+type scaleBarRenderer struct {
+	s       *scaleBar
+	numbers [3]*canvas.Text
+	marks   [columns]*canvas.Rectangle
+	objects []fyne.CanvasObject
+}
+
+func (r *scaleBarRenderer) Destroy()                     {}
+func (r *scaleBarRenderer) Objects() []fyne.CanvasObject { return r.objects }
+func (r *scaleBarRenderer) MinSize() fyne.Size           { return fyne.NewSize(scaleWide, 60) }
+
+func (r *scaleBarRenderer) Layout(size fyne.Size) {
+	const strip, air = 12, 6
+	high := max(0, size.Height-2*air)
+	r.s.strip.Move(fyne.NewPos(0, air))
+	r.s.strip.Resize(fyne.NewSize(strip, high))
+	for i, t := range r.numbers {
+		text := t.MinSize()
+		t.Move(fyne.NewPos(strip+6, air+high*float32(i)/2-text.Height/2))
+		t.Resize(text)
+	}
+	for i, m := range r.marks {
+		m.Hidden = i >= len(r.s.marks)
+		if !m.Hidden {
+			m.Move(fyne.NewPos(-3, air+high*float32(1-r.s.marks[i])-1))
+			m.Resize(fyne.NewSize(strip+6, 2))
+		}
+	}
+}
+
+func (r *scaleBarRenderer) Refresh() {
+	for _, t := range r.numbers {
+		t.Color, t.TextSize = themed(colourDim), theme.CaptionTextSize()
+	}
+	for _, m := range r.marks {
+		m.FillColor = themed(theme.ColorNameForeground)
+	}
+	r.Layout(r.s.Size())
+	canvas.Refresh(r.s)
+}

@@ -1,0 +1,258 @@
+package ui
+
+import (
+	"image"
+	"image/color"
+	"math"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/canvas"
+	"fyne.io/fyne/v2/driver/desktop"
+	"fyne.io/fyne/v2/theme"
+	"fyne.io/fyne/v2/widget"
+
+	"pavilight/app/solid"
+	"pavilight/facets"
+)
+
+// solidView shows the stone as a solid that turns under the pointer, with the
+// names of its tiers. A click on a facet selects its tier.
+type solidView struct {
+	widget.BaseWidget
+
+	stone    *facets.Stone
+	pose     solid.Pose
+	selected string
+	pick     func(tier string)
+
+	picture *canvas.Image
+	drawing *solid.Drawing
+	labels  []solid.Label
+	scale   float32 // device pixels a unit
+	dragged bool
+	focused bool
+}
+
+var (
+	_ fyne.Draggable     = (*solidView)(nil)
+	_ fyne.Focusable     = (*solidView)(nil)
+	_ desktop.Mouseable  = (*solidView)(nil)
+	_ desktop.Cursorable = (*solidView)(nil)
+)
+
+// mostLabels is how many tiers are named on the solid.
+const mostLabels = 24
+
+func newSolidView(pick func(tier string)) *solidView {
+	s := &solidView{pose: restingPose(), picture: &canvas.Image{}, pick: pick}
+	s.picture.ScaleMode = canvas.ImageScaleFastest
+	s.picture.FillMode = canvas.ImageFillStretch
+	s.ExtendBaseWidget(s)
+	return s
+}
+
+// restingPose looks from above the girdle, so that crown and outline are read at once.
+func restingPose() solid.Pose { return solid.FaceUp().Turned(0, 38*facets.Degree) }
+
+func (s *solidView) show(stone *facets.Stone) {
+	s.stone = stone
+	s.redraw()
+}
+
+func (s *solidView) turnTo(p solid.Pose) {
+	s.pose = p
+	s.redraw()
+}
+
+func (s *solidView) selectTier(tier string) {
+	if s.selected != tier {
+		s.selected = tier
+		s.redraw()
+	}
+}
+
+// redraw paints the solid at the resolution of the screen. The toolkit reads the
+// picture on this same goroutine, so one buffer will do.
+func (s *solidView) redraw() {
+	s.scale = 1
+	if c := fyne.CurrentApp().Driver().CanvasForObject(s); c != nil {
+		s.scale = c.Scale()
+	}
+	const most = 2048 // pixels; beyond, the screen's scaling has to do
+	width := min(most, int(s.Size().Width*s.scale))
+	height := min(most, int(s.Size().Height*s.scale))
+	if s.stone == nil || width < 8 || height < 8 {
+		s.Refresh()
+		return
+	}
+	dst, ok := s.picture.Image.(*image.RGBA)
+	if !ok || dst.Rect.Dx() != width || dst.Rect.Dy() != height {
+		dst = image.NewRGBA(image.Rect(0, 0, width, height))
+		s.picture.Image = dst
+	}
+	s.drawing = solid.Project(s.stone, s.pose, width, height)
+	s.drawing.Paint(dst, solid.Style{
+		Width:    float64(1.25 * s.scale),
+		Selected: s.selected,
+		Colours: solid.Colours{
+			Ground:   themedRGBA(colourPane),
+			Body:     themedRGBA(colourBody),
+			Shade:    themedRGBA(colourDusk),
+			Edge:     themedRGBA(colourEdge),
+			Selected: themedRGBA(theme.ColorNamePrimary),
+		},
+	})
+	const least = 150 // square units of a facet that takes a name
+	s.labels = s.drawing.Labels(float64(least * s.scale * s.scale))
+	s.Refresh()
+}
+
+// Resize draws anew.
+func (s *solidView) Resize(size fyne.Size) {
+	if size == s.Size() {
+		return
+	}
+	s.BaseWidget.Resize(size)
+	s.redraw()
+}
+
+// Dragged turns the stone as if the pointer held its near side.
+func (s *solidView) Dragged(e *fyne.DragEvent) {
+	s.dragged = true
+	radius := float64(min(s.Size().Width, s.Size().Height)) / 2
+	if radius <= 0 {
+		return
+	}
+	turn := func(by float32) facets.Angle { return facets.Angle(float64(by) / radius) }
+	s.turnTo(s.pose.Turned(turn(e.Dragged.DX), turn(-e.Dragged.DY)))
+}
+
+// DragEnd is not used.
+func (s *solidView) DragEnd() {}
+
+// MouseDown takes the focus.
+func (s *solidView) MouseDown(*desktop.MouseEvent) {
+	s.dragged = false
+	if c := fyne.CurrentApp().Driver().CanvasForObject(s); c != nil {
+		c.Focus(s)
+	}
+}
+
+// MouseUp selects the tier of the facet under the pointer, unless the stone was turned.
+func (s *solidView) MouseUp(e *desktop.MouseEvent) {
+	if s.dragged || s.drawing == nil || e.Button != desktop.MouseButtonPrimary {
+		return
+	}
+	tier := ""
+	if i, ok := s.drawing.Facet(float64(e.Position.X*s.scale), float64(e.Position.Y*s.scale)); ok {
+		tier = s.stone.Facets[i].Tier
+	}
+	s.pick(tier)
+}
+
+// Cursor tells that the stone can be taken hold of.
+func (s *solidView) Cursor() desktop.Cursor { return desktop.PointerCursor }
+
+// TypedKey turns the stone: arrows by five degrees, Home back to rest.
+func (s *solidView) TypedKey(e *fyne.KeyEvent) {
+	const step = 5 * facets.Degree
+	switch e.Name {
+	case fyne.KeyLeft:
+		s.turnTo(s.pose.Turned(-step, 0))
+	case fyne.KeyRight:
+		s.turnTo(s.pose.Turned(step, 0))
+	case fyne.KeyUp:
+		s.turnTo(s.pose.Turned(0, step))
+	case fyne.KeyDown:
+		s.turnTo(s.pose.Turned(0, -step))
+	case fyne.KeyPageUp:
+		s.turnTo(s.pose.Spun(step))
+	case fyne.KeyPageDown:
+		s.turnTo(s.pose.Spun(-step))
+	case fyne.KeyHome:
+		s.turnTo(restingPose())
+	case fyne.KeyEscape:
+		s.pick("")
+	}
+}
+
+// TypedRune is not used.
+func (s *solidView) TypedRune(rune) {}
+
+// FocusGained shows the frame.
+func (s *solidView) FocusGained() { s.focused = true; s.Refresh() }
+
+// FocusLost hides the frame.
+func (s *solidView) FocusLost() { s.focused = false; s.Refresh() }
+
+// CreateRenderer builds the picture and a stock of labels.
+func (s *solidView) CreateRenderer() fyne.WidgetRenderer {
+	r := &solidViewRenderer{s: s, frame: canvas.NewRectangle(color.Transparent)}
+	r.objects = []fyne.CanvasObject{s.picture}
+	for i := range mostLabels {
+		r.plates[i] = canvas.NewRectangle(color.Transparent)
+		r.plates[i].CornerRadius = 3
+		r.labels[i] = canvas.NewText("", color.Transparent)
+		r.objects = append(r.objects, r.plates[i], r.labels[i])
+	}
+	r.objects = append(r.objects, r.frame)
+	r.Refresh()
+	return r
+}
+
+type solidViewRenderer struct {
+	s       *solidView
+	plates  [mostLabels]*canvas.Rectangle
+	labels  [mostLabels]*canvas.Text
+	frame   *canvas.Rectangle
+	objects []fyne.CanvasObject
+}
+
+func (r *solidViewRenderer) Destroy()                     {}
+func (r *solidViewRenderer) Objects() []fyne.CanvasObject { return r.objects }
+func (r *solidViewRenderer) MinSize() fyne.Size           { return fyne.NewSize(120, 120) }
+
+func (r *solidViewRenderer) Layout(size fyne.Size) {
+	s := r.s
+	s.picture.Resize(size)
+	r.frame.Resize(size)
+	for i, t := range r.labels {
+		if t.Hidden {
+			continue
+		}
+		l := s.labels[i]
+		text := t.MinSize()
+		at := fyne.NewPos(float32(math.Round(l.X))/s.scale-text.Width/2, float32(math.Round(l.Y))/s.scale-text.Height/2)
+		t.Move(at)
+		t.Resize(text)
+		r.plates[i].Move(at.AddXY(-3, 0))
+		r.plates[i].Resize(text.AddWidthHeight(6, 0))
+	}
+}
+
+func (r *solidViewRenderer) Refresh() {
+	s := r.s
+	for i, t := range r.labels {
+		shown := i < len(s.labels) && s.stone != nil
+		t.Hidden, r.plates[i].Hidden = !shown, !shown
+		if !shown {
+			continue
+		}
+		t.Text, t.TextSize = s.labels[i].Tier, theme.CaptionTextSize()
+		t.TextStyle.Bold = s.labels[i].Tier == s.selected
+		t.Color = themed(theme.ColorNameForeground)
+		plate := themedRGBA(colourPane)
+		plate.R, plate.G, plate.B, plate.A = tint(plate.R), tint(plate.G), tint(plate.B), tint(255)
+		r.plates[i].FillColor = plate
+	}
+	r.frame.StrokeWidth, r.frame.StrokeColor = 0, color.Transparent
+	if s.focused {
+		r.frame.StrokeWidth, r.frame.StrokeColor = 2, themed(theme.ColorNameFocus)
+	}
+	r.Layout(s.Size())
+	s.picture.Refresh()
+	canvas.Refresh(s)
+}
+
+// tint is a channel at three quarters, premultiplied.
+func tint(v uint8) uint8 { return uint8(int(v) * 3 / 4) }

@@ -1,0 +1,391 @@
+package ui
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/canvas"
+	"fyne.io/fyne/v2/container"
+	"fyne.io/fyne/v2/layout"
+	"fyne.io/fyne/v2/theme"
+	"fyne.io/fyne/v2/widget"
+
+	"pavilight/app/model"
+	"pavilight/app/solid"
+	"pavilight/facets"
+	"pavilight/trace"
+)
+
+// window is the program's one window. All of its methods run on the toolkit's
+// goroutine.
+type window struct {
+	app   fyne.App
+	win   fyne.Window
+	bench *model.Bench
+	tell  func(stage string) // of interest to scripts that drive the window
+
+	// header
+	title    *line
+	material *chooser
+	width    *numberField
+	weight   *line
+	doors    [rooms]*roomButton
+	state    *line
+	progress *progressLine
+	stop     *widget.Button
+
+	// rooms
+	room   room
+	panes  *paneLayout
+	body   *fyne.Container
+	coming *fyne.Container
+	notice *widget.Label
+
+	list     *tierList
+	troubles *widget.Label
+	fault    *fyne.Container
+	grid     *grid
+	tilt     *numberField
+	turn     *numberField
+	head     *numberField
+	solid    *solidView
+	facts    *factTable
+
+	message *line
+	light   *line
+
+	menu    menus
+	files   fileMemory
+	ledgers throttle
+	stages  map[string]bool
+}
+
+// newWindow builds the window around a bench; nothing is shown yet.
+func newWindow(a fyne.App, doc *model.Document, tell func(string)) (*window, error) {
+	w := &window{app: a, tell: tell, stages: map[string]bool{}}
+	bench, err := model.NewBench(doc, post, w.onLook, w.onPlan)
+	if err != nil {
+		return nil, err
+	}
+	w.bench = bench
+	w.files = fileMemory{a.Preferences()}
+	w.win = a.NewWindow("Pavilight")
+	w.build()
+	w.win.SetContent(w.content())
+	w.win.SetMainMenu(w.buildMenu())
+	w.win.SetCloseIntercept(w.requestClose)
+	w.win.SetOnDropped(w.dropped)
+	w.win.Canvas().SetOnTypedKey(w.strayKey)
+	w.win.Resize(w.files.windowSize())
+	w.onPlan()
+	return w, nil
+}
+
+func (w *window) build() {
+	w.title = newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, "").bold()
+	w.material = newChooser(theme.SizeNameText, nil)
+	w.material.opens = w.chooseMaterial
+	w.width = newNumberField(func(s string) (float64, error) { return model.ParseNumber(s, "mm") },
+		func(v float64) string { return fmt.Sprintf("%.2f", v) }, 0.1)
+	w.width.commit, w.width.trouble = w.bench.SetWidth, w.say
+	w.weight = newWord(colourDim, theme.SizeNameText, "")
+	for r := range rooms {
+		w.doors[r] = newRoomButton(r.String(), func() { w.enter(r) })
+	}
+	w.state = newLine(colourDim, theme.SizeNameText).aligned(fyne.TextAlignTrailing)
+	w.progress = newProgressLine()
+	w.stop = widget.NewButton("Stop", w.stopOrResume)
+
+	w.list = newTierList(w.bench, w.say)
+	w.troubles = widget.NewLabel("")
+	w.troubles.Wrapping = fyne.TextWrapWord
+	w.fault = w.troubleBox()
+	w.fault.Hide()
+
+	w.grid = newGrid(w.bench)
+	w.grid.onPixels = func(px int) { w.bench.Look.Adjust(func(s *trace.Settings) { s.Pixels = px }) }
+	degrees := func(set func(*trace.Settings, facets.Angle), most float64, what string, step float64) *numberField {
+		f := newNumberField(readDegrees, writeDegrees, step)
+		f.commit = func(v float64) error {
+			if !(v >= 0 && v <= most) {
+				return fmt.Errorf("%s goes from 0° to %g°", what, most)
+			}
+			w.bench.Look.Adjust(func(s *trace.Settings) { set(s, facets.Angle(v)*facets.Degree) })
+			w.refreshLight()
+			return nil
+		}
+		f.trouble = w.say
+		return f
+	}
+	w.tilt = degrees(func(s *trace.Settings, a facets.Angle) { s.View.Tilt = a }, 80, "the tilt", 1)
+	w.head = degrees(func(s *trace.Settings, a facets.Angle) { s.Head = a }, 60, "the half-angle of the viewer's head", 1)
+	w.turn = newNumberField(func(s string) (float64, error) { return model.ParseNumber(s, "") },
+		func(v float64) string { return fmt.Sprintf("%.4g", v) }, 1)
+	w.turn.commit = func(v float64) error {
+		gear := float64(w.bench.Doc.Plan().Gear)
+		if !(v >= 0 && v <= gear) {
+			return fmt.Errorf("an index goes from 0 to %g on this gear", gear)
+		}
+		w.bench.Look.Adjust(func(s *trace.Settings) { s.View.Turn = facets.Angle(2 * math.Pi * v / gear) })
+		w.refreshLight()
+		return nil
+	}
+	w.turn.trouble = w.say
+
+	w.solid = newSolidView(func(tier string) {
+		w.bench.Select(tier)
+		w.list.reveal(tier)
+	})
+	w.facts = newFactTable()
+	w.message = newLine(colourDim, theme.SizeNameCaptionText)
+	w.light = newLine(colourDim, theme.SizeNameCaptionText).aligned(fyne.TextAlignTrailing)
+}
+
+// content puts the window together: header, panes, status line.
+func (w *window) content() fyne.CanvasObject {
+	w.panes = &paneLayout{files: w.files}
+	w.body = container.New(w.panes, w.planPane(), w.lookPane(), w.stonePane())
+	w.notice = widget.NewLabel("")
+	w.notice.Wrapping = fyne.TextWrapWord
+	w.notice.Alignment = fyne.TextAlignCenter
+	w.coming = container.NewCenter(container.NewGridWrap(fyne.NewSize(460, 160), w.notice))
+	w.coming.Hide()
+	status := container.New(layout.NewCustomPaddedLayout(2, 4, 12, 12), container.NewGridWithColumns(2, w.message, w.light))
+	return container.NewBorder(w.headerBar(), status, nil, nil, container.NewStack(w.body, w.coming))
+}
+
+func (w *window) headerBar() fyne.CanvasObject {
+	unit := newWord(colourDim, theme.SizeNameText, "mm")
+	left := container.NewHBox(w.title, gap(6), w.material, gap(2),
+		container.NewGridWrap(fyne.NewSize(58, w.width.MinSize().Height), w.width), unit, gap(4), w.weight)
+	doors := container.New(layout.NewCustomPaddedHBoxLayout(2))
+	for _, d := range w.doors {
+		doors.Add(d)
+	}
+	right := container.NewHBox(
+		container.NewCenter(container.NewGridWrap(fyne.NewSize(190, lineHeight()), w.state)),
+		container.NewCenter(container.NewGridWrap(fyne.NewSize(90, 6), w.progress)), w.stop)
+	bar := container.New(&headerLayout{}, left, doors, container.NewCenter(right))
+	return container.NewStack(ground(colourPane), container.New(layout.NewCustomPaddedLayout(4, 4, 14, 10), bar))
+}
+
+// planPane is the left one: the tiers, and what is wrong with the plan if anything is.
+func (w *window) planPane() fyne.CanvasObject {
+	return pane(container.NewBorder(nil, w.fault, nil, nil, w.list.scroll))
+}
+
+func (w *window) troubleBox() *fyne.Container {
+	heading := newLine(theme.ColorNameError, theme.SizeNameText).bold()
+	heading.setText("⚠ This plan makes no stone")
+	keeps := newLine(colourDim, theme.SizeNameCaptionText)
+	keeps.setText("The maps show the last stone that it made.")
+	scroll := container.NewVScroll(w.troubles)
+	scroll.SetMinSize(fyne.NewSize(100, 110))
+	return container.NewStack(ground(theme.ColorNameInputBackground),
+		container.New(layout.NewCustomPaddedLayout(8, 8, 8, 8), container.NewBorder(
+			container.New(layout.NewCustomPaddedVBoxLayout(2), heading, keeps), nil, nil, nil, scroll)))
+}
+
+// lookPane is the middle one: how the stone is looked at, and the grid of maps.
+func (w *window) lookPane() fyne.CanvasObject {
+	word := func(s string) fyne.CanvasObject { return newWord(colourDim, theme.SizeNameText, s) }
+	field := func(f *numberField) fyne.CanvasObject {
+		return container.NewGridWrap(fyne.NewSize(58, f.MinSize().Height), f)
+	}
+	view := container.NewHBox(word("Tilted"), field(w.tilt), word("° toward index"), field(w.turn), gap(14),
+		word("Viewer's head"), field(w.head), word("°"))
+	return pane(container.New(layout.NewCustomPaddedLayout(8, 8, 14, 6),
+		container.NewBorder(container.New(layout.NewCustomPaddedLayout(0, 8, 0, 0), view), nil, nil, nil, w.grid.box)))
+}
+
+// stonePane is the right one: the solid and its measures.
+func (w *window) stonePane() fyne.CanvasObject {
+	pose := func(name string, p func() solid.Pose) fyne.CanvasObject {
+		b := widget.NewButton(name, func() { w.solid.turnTo(p()) })
+		b.Importance = widget.LowImportance
+		return b
+	}
+	poses := container.NewGridWithColumns(4, pose("Table", solid.FaceUp), pose("Side", solid.Profile),
+		pose("Culet", solid.FaceDown), pose("Askew", restingPose))
+	top := container.New(&squareLayout{}, w.solid, poses)
+	return pane(container.NewBorder(top, nil, nil, nil,
+		container.NewVScroll(container.New(layout.NewCustomPaddedLayout(8, 8, 14, 14), w.facts.box))))
+}
+
+func ground(name fyne.ThemeColorName) fyne.CanvasObject { return newGround(name) }
+
+func pane(content fyne.CanvasObject) fyne.CanvasObject {
+	return container.NewStack(ground(colourPane), content)
+}
+
+func gap(width float32) fyne.CanvasObject {
+	r := canvas.NewRectangle(nil)
+	r.SetMinSize(fyne.NewSize(width, 1))
+	return r
+}
+
+// enter opens a room.
+func (w *window) enter(r room) {
+	w.room = r
+	for k := range rooms {
+		w.doors[k].setOpen(k == r)
+	}
+	if r == lookRoom {
+		w.coming.Hide()
+		w.body.Show()
+		return
+	}
+	w.notice.SetText(r.coming())
+	w.body.Hide()
+	w.coming.Show()
+}
+
+// say tells why an entry was refused, and takes it back with nil.
+func (w *window) say(err error) {
+	if err == nil {
+		w.message.setColour(colourDim)
+		w.message.setText("")
+		return
+	}
+	w.message.setColour(theme.ColorNameError)
+	w.message.setText("⚠ " + err.Error())
+}
+
+// report says what was done.
+func (w *window) report(text string) {
+	w.message.setColour(colourDim)
+	w.message.setText(text)
+}
+
+// onLook follows the maps.
+func (w *window) onLook(c model.Change) {
+	if w.grid == nil { // the bench tells of itself before the window is built
+		return
+	}
+	switch c {
+	case model.StoneChanged:
+		w.refreshStone()
+	case model.MapsChanged:
+		w.grid.refreshMaps()
+		final := w.bench.Look.Frame != nil && w.bench.Look.Frame.Final
+		if w.ledgers.due(final) {
+			w.grid.refreshHeadings()
+			w.grid.refreshLedger()
+			w.refreshProgress()
+		}
+		w.once("coarse")
+		if final {
+			w.tell("refined")
+		}
+	case model.StateChanged:
+		w.refreshProgress()
+	case model.PointerChanged:
+		w.grid.refreshPointer()
+		w.refreshPointer()
+	}
+}
+
+// once tells a stage the first time it is reached.
+func (w *window) once(stage string) {
+	if !w.stages[stage] {
+		w.stages[stage] = true
+		w.tell(stage)
+	}
+}
+
+// onPlan follows the plan, its history and what is selected.
+func (w *window) onPlan() {
+	if w.grid == nil {
+		return
+	}
+	plan := w.bench.Doc.Plan()
+	w.title.setText(w.bench.Doc.Title())
+	w.win.SetTitle(w.bench.Doc.Title() + " – Pavilight")
+	w.width.show(plan.WidthMM)
+	name := plan.Material.Name
+	if m, err := model.MaterialOf(plan.Material); err == nil {
+		name = m.Name
+	}
+	w.material.setText(name)
+	w.list.refresh()
+	w.solid.selectTier(w.bench.Selected)
+	w.grid.refreshHeadings()
+	w.refreshLight()
+	w.refreshFacts()
+	w.refreshMenu()
+}
+
+func (w *window) refreshStone() {
+	lines := w.bench.Troubles()
+	if len(lines) > 0 {
+		w.troubles.SetText(strings.Join(lines, "\n"))
+		w.fault.Show()
+	} else if w.fault.Visible() {
+		w.fault.Hide()
+	}
+	w.solid.show(w.bench.Look.Subject.Stone)
+	w.list.refresh() // angles that the solver found
+	w.refreshFacts()
+}
+
+func (w *window) refreshFacts() {
+	facts := w.bench.Facts()
+	w.facts.show(facts)
+	w.weight.setText(w.bench.Weight())
+}
+
+func (w *window) refreshLight() {
+	s := w.bench.Look.Settings()
+	w.tilt.show(s.View.Tilt.Degrees())
+	w.head.show(s.Head.Degrees())
+	turn := s.View.Turn.Radians() / (2 * math.Pi) * float64(w.bench.Doc.Plan().Gear)
+	w.turn.show(turn)
+	w.light.setText(w.bench.Look.LightInWords())
+}
+
+func (w *window) refreshPointer() {
+	x, y, ok := w.bench.Look.Place()
+	if !ok {
+		w.report("")
+		return
+	}
+	w.report(fmt.Sprintf("%+.2f mm right, %+.2f mm up from the middle", x, y))
+}
+
+func (w *window) refreshProgress() {
+	p := w.bench.Look.Progress()
+	w.state.setText(w.bench.Look.Status())
+	w.progress.show(p.Share)
+	setVisible(w.progress, p.Active || p.Stopped)
+	text := "Stop"
+	if p.Stopped {
+		text = "Go on"
+	}
+	if w.stop.Text != text {
+		w.stop.SetText(text)
+	}
+	if enabled := p.Active || p.Stopped; enabled == w.stop.Disabled() {
+		if enabled {
+			w.stop.Enable()
+		} else {
+			w.stop.Disable()
+		}
+	}
+}
+
+func (w *window) stopOrResume() {
+	if w.bench.Look.Progress().Stopped {
+		w.bench.Look.Resume()
+	} else {
+		w.bench.Look.Stop()
+	}
+}
+
+// strayKey takes keys that no widget wants.
+func (w *window) strayKey(e *fyne.KeyEvent) {
+	if e.Name == fyne.KeyEscape && w.bench.Look.Progress().Active {
+		w.bench.Look.Stop()
+	}
+}
