@@ -42,7 +42,7 @@ type Description struct {
 type RayDescription struct {
 	Ray          string     `json:"ray"` // "" for an isotropic material
 	Index        *float64   `json:"index"`
-	Dispersion   *float64   `json:"dispersion"` // n_G − n_B; nil where G or B lies outside the range, or none was found
+	Dispersion   *float64   `json:"dispersion"` // n_G − n_B; nil outside the range, or where none was found
 	Abbe         *float64   `json:"abbe"`       // (n_d − 1)/(n_F − n_C), likewise
 	Formula      string     `json:"formula"`
 	Coefficients []float64  `json:"coefficients"`
@@ -166,7 +166,9 @@ func positive(v float64) *float64 {
 
 // Heading names the columns of Row.
 func Heading() []string {
-	return []string{"key", "name", "index at D", "dispersion G-B", "character", "density g/cm³", "hardness", "index known"}
+	return []string{
+		"key", "name", "index at D", "dispersion B to G", "character", "density g/cm³", "hardness", "index known",
+	}
 }
 
 // Row returns the material as one row of the short table, under Heading.
@@ -219,7 +221,8 @@ func (d Description) Entries() []Entry {
 		es = append(es, Entry{"density", value, d.DensitySource})
 	}
 	if d.Hardness != nil {
-		es = append(es, Entry{"hardness", Span{d.Hardness[0], d.Hardness[1]}.String() + " on Mohs's scale", d.WearSource})
+		hardness := Span{d.Hardness[0], d.Hardness[1]}
+		es = append(es, Entry{"hardness", hardness.String() + " on Mohs's scale", d.WearSource})
 	}
 	if d.Cleavage != "" {
 		es = append(es, Entry{"cleavage", d.Cleavage, d.WearSource})

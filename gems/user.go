@@ -63,7 +63,8 @@ func ReadMaterials(r io.Reader, file string) ([]*Material, error) {
 
 // notTOML tells where a text stops being TOML.
 func notTOML(err error, file string) *Fault {
-	f := &Fault{File: file, Why: "this is not TOML: " + strings.TrimPrefix(err.Error(), "toml: "), Remedy: "correct this line"}
+	why := "this is not TOML: " + strings.TrimPrefix(err.Error(), "toml: ")
+	f := &Fault{File: file, Why: why, Remedy: "correct this line"}
 	var de *toml.DecodeError
 	if errors.As(err, &de) {
 		f.Line, _ = de.Position()
@@ -153,36 +154,60 @@ func (t *table) rays(from Source) []Dispersion {
 	case len(written) > 0 && (len(indices) > 0 || hasSpread):
 		t.fault("ray", "", "stands beside index or dispersion", "keep the one or the other")
 	case len(written) > 3 || len(indices) > 3:
-		t.fault("index", "", "has more than three rays", "give one, two (ordinary, extraordinary) or three (alpha, beta, gamma)")
+		t.fault("index", "", "has more than three rays",
+			"give one, two (ordinary, extraordinary) or three (alpha, beta, gamma)")
 	case len(written) == 0 && len(indices) == 0:
 		if !t.faulty("index") && !t.faulty("ray") {
 			t.missing("index", "write index = 1.62, or [[material.ray]] with a formula")
 		}
 	case len(indices) == 3 && !slices.IsSorted(indices):
-		t.fault("index", fmt.Sprint(indices), "is not in ascending order", "write alpha, beta, gamma, the least first")
+		t.fault("index", fmt.Sprint(indices), "is not in ascending order",
+			"write alpha, beta, gamma, the least first")
 	}
 	var rays []Dispersion
 	for _, n := range indices {
-		if hasSpread {
-			rays = append(rays, fitted(n, spread, from, from))
-		} else {
+		if !hasSpread {
 			rays = append(rays, Dispersion{Kind: Constant, Coefficients: []float64{n},
-				Lo: visibleLo, Hi: visibleHi,
-				Fitted: true, Source: from})
+				Lo: visibleLo, Hi: visibleHi, Fitted: true, Source: from})
+			continue
 		}
+		fit := fitted(n, spread, from, from)
+		if least := fit.at(visibleHi); least < leastIndex {
+			t.fault("dispersion", fmt.Sprint(spread), fmt.Sprintf("gives the index %.3g at %v", least, visibleHi),
+				"check it: it is the index at G less that at B, mostly under 0.3")
+		}
+		rays = append(rays, fit)
 	}
 	for _, r := range written {
 		rays = append(rays, r.ray(from))
 	}
+	if len(written) > 0 && !slices.ContainsFunc(written, (*table).anyFault) {
+		t.together(rays)
+	}
 	return rays
+}
+
+// together checks what only all the rays show: a range that they share, and their order.
+func (t *table) together(rays []Dispersion) {
+	m := Material{Rays: rays}
+	lo, hi := m.Range()
+	p, err := m.Indices(min(max(LineD, lo), hi))
+	switch {
+	case lo > hi || err != nil:
+		t.fault("ray", "", "have ranges that do not meet", "give formulas for the same wavelengths")
+	case lo >= visibleHi || hi <= visibleLo:
+		t.fault("ray", "", "say nothing about light that is seen", "give formulas for some of 400 to 700 nm")
+	case len(rays) == 3 && !slices.IsSorted(p[:]):
+		t.fault("ray", "", "are not in ascending order", "write alpha, beta, gamma, the least first")
+	}
 }
 
 // ray reads one [[material.ray]].
 func (t *table) ray(from Source) Dispersion {
 	d := Dispersion{Source: from}
 	formula, ok := t.text("formula")
-	kinds := map[string]Kind{"constant": Constant, "cauchy": Cauchy, "sellmeier": Sellmeier, "resonance": Resonance,
-		"pole": Pole, "laurent": Laurent, "points": Points}
+	kinds := map[string]Kind{"constant": Constant, "cauchy": Cauchy, "sellmeier": Sellmeier,
+		"resonance": Resonance, "pole": Pole, "laurent": Laurent, "points": Points}
 	kind, known := kinds[formula]
 	switch {
 	case !ok:
@@ -296,15 +321,18 @@ func (t *table) colour(from Source) *Absorption {
 	if c.anyFault() {
 		return a
 	}
-	ascending := slices.IsSorted(a.Wavelengths) && len(slices.Compact(slices.Clone(a.Wavelengths))) == len(a.Wavelengths)
-	if len(a.Wavelengths) < 2 || !ascending {
+	distinct := slices.Compact(slices.Clone(a.Wavelengths))
+	if len(distinct) < 2 || len(distinct) < len(a.Wavelengths) || !slices.IsSorted(a.Wavelengths) {
 		c.fault("wavelength_nm", "", "is not a list of two or more wavelengths in ascending order", "sort it")
 	}
+	uneven := func(field string) {
+		c.fault(field, "", "has not one number for each wavelength", "give both lists the same length")
+	}
 	if len(a.Ordinary) != len(a.Wavelengths) {
-		c.fault("ordinary_per_mm", "", "has not one number for each wavelength", "give both lists the same length")
+		uneven("ordinary_per_mm")
 	}
 	if n := len(a.Extraordinary); n > 0 && n != len(a.Wavelengths) {
-		c.fault("extraordinary_per_mm", "", "has not one number for each wavelength", "give both lists the same length")
+		uneven("extraordinary_per_mm")
 	}
 	return a
 }
