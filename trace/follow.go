@@ -24,7 +24,8 @@ type tracer struct {
 	headCos float64   // light that leaves closer to the eye than this comes from the head
 	faint   float64   // faintShare, but where tests compare whole paths
 
-	averaged bool // the two polarisations are averaged at every facet
+	averaged bool    // the two polarisations are averaged at every facet
+	kernel   *kernel // the fast form; nil for float64 throughout
 	bins     angleBins
 }
 

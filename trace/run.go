@@ -51,6 +51,8 @@ type Settings struct {
 	Error      float64         // stop when the standard error of every ledger entry is below; 0 means 0.0005
 	Seed       uint64          // same seed, same result, for any number of workers
 	Workers    int             // goroutines that trace; 0 means all cores
+
+	exact bool // trace in float64, also where there is a fast kernel in float32
 }
 
 // Result is what a run found, one column a medium, in the scene's order.
@@ -177,6 +179,9 @@ func newRun(scene Scene, settings Settings) (*run, error) {
 		return nil, err
 	}
 	r.tracer.averaged = settings.Averaged
+	if !settings.exact {
+		r.tracer.kernel = newKernel(r.tracer)
+	}
 	for i := range r.points {
 		r.points[i] = newPoints(settings.Seed, i)
 	}
@@ -357,19 +362,22 @@ func (r *run) trace(unit, scrambling, number int) *chunk {
 		pixel := (pixels-1-int(py*float64(pixels)))*pixels + int(px*float64(pixels))
 		c.entries = append(c.entries, entry{i, int32(facet), int32(pixel), x, w})
 	}
-	c.sums = make([]sums, len(r.scene.Media))
+	rays := make([]ray, 0, len(r.scene.Media)*len(c.entries))
 	for k, medium := range r.scene.Media {
-		ledgers := make([]Ledger, len(c.entries))
 		for i := range c.entries {
 			e := &c.entries[i]
 			// Both indices are known to be in range since newRun.
 			n, _ := r.scene.Material.Index(e.wavelength)
 			m, _ := medium.Index(e.wavelength)
-			ledgers[i] = r.tracer.follow(int(e.facet), e.at, n, m, newDice(points, e.point, k), &c.sums[k])
-			c.sums[k].addLedger(ledgers[i])
+			rays = append(rays, ray{e.facet, int32(k), e.at, n, m, newDice(points, e.point, k)})
 		}
+	}
+	ledgers := make([]Ledger, len(rays))
+	c.sums = make([]sums, len(r.scene.Media))
+	r.tracer.followAll(rays, ledgers, c.sums)
+	for k := range c.sums {
 		c.sums[k][rayCount] = float64(len(c.entries))
-		c.ledgers = append(c.ledgers, ledgers)
+		c.ledgers = append(c.ledgers, ledgers[k*len(c.entries):(k+1)*len(c.entries)])
 	}
 	return c
 }

@@ -125,7 +125,7 @@ func TestEndGameIsUnbiased(t *testing.T) {
 	for _, averaged := range []bool{false, true} {
 		scene := lump(t)
 		at := func(faint float64, seed uint64) Column {
-			r, err := newRun(scene, Settings{Wavelength: 550, Pixels: 4, Samples: 1, Seed: seed, Averaged: averaged})
+			r, err := newRun(scene, Settings{Wavelength: 550, Pixels: 4, Samples: 1, Seed: seed, Averaged: averaged, exact: true})
 			if err != nil {
 				t.Fatal(err)
 			}
@@ -152,7 +152,7 @@ func TestEndGameIsUnbiased(t *testing.T) {
 func TestUniformSurround(t *testing.T) {
 	for name, s := range stones(t) {
 		scene := Scene{s, plain(t, "stone", 1.9), []*gems.Material{plain(t, "air", 1), plain(t, "dense", 2.2)}}
-		for _, c := range mustRun(t, scene, Settings{Wavelength: 550, Pixels: 8, Samples: 4, Below: 1, View: View{Tilt: 20 * facets.Degree}}).Columns {
+		for _, c := range mustRun(t, scene, Settings{Wavelength: 550, Pixels: 8, Samples: 4, Below: 1, View: View{Tilt: 20 * facets.Degree}, exact: true}).Columns {
 			near(t, name+" in "+c.Medium.Name, c.Lit.Sum+c.Ledger.Unresolved, 1, 1e-12, "a lossless stone in a uniform surround shows the surround")
 			if c.Ledger.Unresolved > 1e-6 {
 				t.Errorf("%s: unresolved %g", name, c.Ledger.Unresolved)
@@ -169,7 +169,7 @@ func TestUniformSurround(t *testing.T) {
 // TestHead moves light from returned to head and nowhere else; the bins tell how much.
 func TestHead(t *testing.T) {
 	scene := lump(t)
-	settings := Settings{Wavelength: 550, Pixels: 4, Samples: 100}
+	settings := Settings{Wavelength: 550, Pixels: 4, Samples: 100, exact: true}
 	free := mustRun(t, scene, settings)
 	settings.Head = 15 * facets.Degree
 	headed := mustRun(t, scene, settings)
@@ -186,7 +186,7 @@ func TestMapIsThePicture(t *testing.T) {
 	// A bar that lies along x, so upright in the picture, flat table.
 	s := solid(t, box(3, 1, 0.5))
 	scene := Scene{s, plain(t, "stone", 1.5), []*gems.Material{plain(t, "air", 1)}}
-	c := mustRun(t, scene, Settings{Wavelength: 550, Pixels: 30, Samples: 30}).Columns[0]
+	c := mustRun(t, scene, Settings{Wavelength: 550, Pixels: 30, Samples: 30, exact: true}).Columns[0]
 	near(t, "span", c.Map.Span, 6, 1e-6, "the bar is 6 mm long")
 	field := c.Map.Field(Leaked)
 	for y := range 30 {

@@ -86,15 +86,27 @@ func mix(x uint64) uint64 {
 
 // dice is the stream of random numbers that one ray may draw in the end-game. It
 // depends on nothing but its start, so a ray's ledger is the same wherever and
-// whenever it is traced.
-type dice uint64
+// whenever it is traced. It is a counter, hashed: 32 bits, so that vectors of eight
+// can throw it (the hash is one of a published search for short ones that mix well).
+type dice uint32
 
 func newDice(p points, i uint32, column int) dice {
 	return dice(mix(uint64(p.key[0])<<32 | uint64(i) ^ uint64(p.key[1])<<7 ^ uint64(column)<<56))
 }
 
-// roll returns the next number, uniform in [0, 1).
+// The steps of the counter and of its hash; the fast tracer has them too.
+const (
+	dieStep  = 0x9e3779b9
+	dieHash1 = 0x21f0aaad
+	dieHash2 = 0x735a2d97
+)
+
+// roll returns the next number, uniform in [0, 1), a multiple of 2^-24.
 func (d *dice) roll() float64 {
-	*d += 0x9e3779b97f4a7c15
-	return float64(mix(uint64(*d))>>11) / (1 << 53)
+	*d += dieStep
+	x := uint32(*d)
+	x = (x ^ x>>16) * dieHash1
+	x = (x ^ x>>15) * dieHash2
+	x ^= x >> 15
+	return float64(x>>8) / (1 << 24)
 }
