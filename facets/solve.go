@@ -307,7 +307,7 @@ func (v *solver) stop(t *Tier, angle Angle, index float64) (float64, bool) {
 			return 0, false
 		}
 		r := v.solid.faces[g].distance
-		z, ok := v.otherEdge(v.solid.faces[g].normal.Mul(r), -s)
+		z, ok := v.otherEdge(v.solid.middleOf(g), -s)
 		if !ok {
 			v.fault(t, "girdle", number(t.Stop.Value), "the other side of the girdle is not cut yet",
 				"cut it first, or stop by level")
@@ -338,6 +338,19 @@ func (v *solver) girdleAt(t *Tier, index float64) (int, bool) {
 			"use meet, or an index of the girdle; there are "+several(there))
 	}
 	return best, best >= 0
+}
+
+// middleOf returns a point in the upright line that halves an upright face,
+// seen from outside. The foot of its normal may lie beside the face.
+func (s *solid) middleOf(g int) mgl64.Vec3 {
+	f := &s.faces[g]
+	along := mgl64.Vec3{-f.normal[1], f.normal[0], 0}
+	low, high := math.Inf(1), math.Inf(-1)
+	for _, c := range f.ring {
+		u := along.Dot(s.corners[c])
+		low, high = math.Min(low, u), math.Max(high, u)
+	}
+	return f.normal.Mul(f.distance).Add(along.Mul((low + high) / 2))
 }
 
 // otherEdge returns the height at which the faces that look down (toward < 0)
