@@ -16,7 +16,7 @@ const (
 	Points                // measured points, joined by straight lines over 1/λ²; nm, n, nm, n, …
 )
 
-// String returns the form as people read it.
+// String returns the form as people read it, for wavelengths in µm where it has them.
 func (k Kind) String() string {
 	return [...]string{
 		"constant",
@@ -124,7 +124,7 @@ func fitted(nD, bToG float64, indexSource, spreadSource Source) Dispersion {
 // Abbe number (n_d − 1)/(n_F − n_C), which chemists print.
 func fittedAbbe(nD, abbe float64, indexSource, spreadSource Source) Dispersion {
 	span := LineF.inverseSquare() - LineC.inverseSquare()
-	shift := Lined.inverseSquare() - LineD.inverseSquare() // n_d = nD + c1·shift
+	shift := LineHeliumD.inverseSquare() - LineD.inverseSquare() // n_d = nD + c1·shift
 	c1 := (nD - 1) / (abbe*span - shift)
 	return twoTerms(nD, c1, indexSource, spreadSource)
 }

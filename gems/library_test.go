@@ -95,3 +95,25 @@ func ExampleFind() {
 	// Corundum, uniaxial negative: 1.768 and 1.760
 	// Corundum: 150 nm is outside the range of its refractive index, 200 to 5000 nm; choose a wavelength inside
 }
+
+func BenchmarkFind(b *testing.B) {
+	b.ReportAllocs()
+	for b.Loop() {
+		if _, err := Find("demantoid"); err != nil {
+			b.Fatal(err)
+		}
+	}
+}
+
+func BenchmarkIndices(b *testing.B) {
+	m, err := Find("corundum")
+	if err != nil {
+		b.Fatal(err)
+	}
+	b.ReportAllocs()
+	for b.Loop() {
+		if _, err := m.Indices(LineD); err != nil {
+			b.Fatal(err)
+		}
+	}
+}

@@ -54,7 +54,7 @@ var linesRows = []linesRow{
 
 func TestFormulasAtSevenLines(t *testing.T) {
 	const rounding = 0.5e-5 + 1e-9 // of the table's fifth decimal
-	lines := [7]Wavelength{LineB, LineC, LineD, Lined, LineE, LineF, LineG}
+	lines := [7]Wavelength{LineB, LineC, LineD, LineHeliumD, LineMercuryE, LineF, LineG}
 	for _, row := range linesRows {
 		m := mustFind(t, row.key)
 		for i, want := range row.n {

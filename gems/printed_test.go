@@ -221,7 +221,7 @@ func TestGlassCatalogues(t *testing.T) {
 		{"silica-glass", 1.45846, 67.82, "Malitson (1965), n at 0.5876 µm as printed; read; V_d computed"},
 	} {
 		d := mustFind(t, row.key).Rays[0]
-		nd := d.at(Lined)
+		nd := d.at(LineHeliumD)
 		vd := (nd - 1) / (d.at(LineF) - d.at(LineC))
 		if math.Abs(nd-row.nd) > fifthDigit/2+1e-9 || math.Abs(vd-row.vd) > hundredth {
 			t.Errorf("%s: n_d %.6f, V_d %.3f, want %.5f, %.2f (%s)", row.key, nd, vd, row.nd, row.vd, row.source)

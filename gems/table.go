@@ -48,6 +48,7 @@ type RayDescription struct {
 	Coefficients []float64  `json:"coefficients"`
 	Range        [2]float64 `json:"range_nm"` // published
 	Temperature  string     `json:"temperature"`
+	Fitted       bool       `json:"fitted"`
 	How          string     `json:"how"` // published, fitted, or published and where fitted
 	Source       Source     `json:"source"`
 	SpreadSource Source     `json:"dispersion_source"`
@@ -102,7 +103,7 @@ func (d *Dispersion) describe() RayDescription {
 	}
 	r := RayDescription{
 		Index: at(LineD), Formula: d.Kind.String(), Coefficients: append([]float64{}, d.Coefficients...),
-		Range: [2]float64{float64(d.Lo), float64(d.Hi)}, Temperature: d.Temperature, How: d.how(),
+		Range: [2]float64{float64(d.Lo), float64(d.Hi)}, Temperature: d.Temperature, Fitted: d.Fitted, How: d.how(),
 		Source: d.Source, SpreadSource: d.SpreadSource,
 	}
 	if d.Kind == Constant {
@@ -112,7 +113,7 @@ func (d *Dispersion) describe() RayDescription {
 		spread := *g - *b
 		r.Dispersion = &spread
 	}
-	if c, y, f := at(LineC), at(Lined), at(LineF); c != nil && y != nil && f != nil && *f > *c {
+	if c, y, f := at(LineC), at(LineHeliumD), at(LineF); c != nil && y != nil && f != nil && *f > *c {
 		abbe := (*y - 1) / (*f - *c)
 		r.Abbe = &abbe
 	}
@@ -178,12 +179,18 @@ func (m *Material) Row() []string {
 	for _, r := range d.Rays {
 		indices = append(indices, decimals(r.Index, 3))
 	}
+	density := "-"
+	if d.Density != nil {
+		density = short(*d.Density)
+	}
 	known := fmt.Sprintf("%g to %g nm", d.Range[0], d.Range[1])
-	if d.Fitted {
+	if m.Rays[0].Fitted {
 		known += ", fitted"
+	} else if d.Fitted {
+		known += ", fitted in part"
 	}
 	return []string{d.Key, d.Name, strings.Join(indices, " "), decimals(d.Rays[0].Dispersion, 3), d.Character,
-		decimals(d.Density, 3), m.Hardness.String(), known}
+		density, m.Hardness.String(), known}
 }
 
 // decimals writes a number with n decimals, an unknown one as a dash.
@@ -244,17 +251,20 @@ func (d Description) Entries() []Entry {
 func (r RayDescription) entries() []Entry {
 	of := strings.TrimSpace(r.Ray + " index")
 	value := decimals(r.Index, 5) + " at the sodium D line, " + r.How
-	if r.Temperature != "" {
+	if r.Temperature == "room" {
+		value += ", room temperature"
+	} else if r.Temperature != "" {
 		value += ", " + r.Temperature
 	}
 	coefficients := make([]string, len(r.Coefficients))
 	for i, c := range r.Coefficients {
 		coefficients[i] = strconv.FormatFloat(c, 'g', 10, 64)
 	}
-	es := []Entry{
-		{of, value, r.Source},
-		{"formula", r.Formula + ": " + strings.Join(coefficients, ", "), r.Source},
+	formula := Entry{"formula", r.Formula + " with " + strings.Join(coefficients, ", "), r.Source}
+	if r.Fitted {
+		formula.Source = "fitted to the index and its dispersion; computed"
 	}
+	es := []Entry{{of, value, r.Source}, formula}
 	if r.Dispersion != nil {
 		source := r.SpreadSource
 		if source == "" {

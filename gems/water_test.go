@@ -152,7 +152,7 @@ func TestFitOfTwoNumbers(t *testing.T) {
 		}
 	}
 	abbe := fittedAbbe(1.477, 56.5, given, given)
-	if v := (abbe.at(Lined) - 1) / (abbe.at(LineF) - abbe.at(LineC)); math.Abs(v-56.5) > 1e-9 {
+	if v := (abbe.at(LineHeliumD) - 1) / (abbe.at(LineF) - abbe.at(LineC)); math.Abs(v-56.5) > 1e-9 {
 		t.Errorf("Abbe number of the fit is %.6f, want 56.5", v)
 	}
 }

@@ -10,13 +10,13 @@ type Wavelength float64
 // Fraunhofer's lines and their modern neighbours. Gem tables refer the index to D,
 // the middle of the sodium doublet, and measure dispersion from B to G.
 const (
-	LineB Wavelength = 686.7
-	LineC Wavelength = 656.27
-	LineD Wavelength = 589.3
-	Lined Wavelength = 587.56 // helium d, to which glass catalogues refer
-	LineE Wavelength = 546.07 // mercury e
-	LineF Wavelength = 486.13
-	LineG Wavelength = 430.8
+	LineB        Wavelength = 686.7
+	LineC        Wavelength = 656.27
+	LineD        Wavelength = 589.3
+	LineHeliumD  Wavelength = 587.56 // helium d, to which glass catalogues refer
+	LineMercuryE Wavelength = 546.07 // mercury e
+	LineF        Wavelength = 486.13
+	LineG        Wavelength = 430.8
 )
 
 // String returns the wavelength with its unit.
