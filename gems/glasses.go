@@ -148,7 +148,7 @@ func glasses() []*Material {
 		},
 		{
 			Key: "acrylic", Name: "Acrylic (PMMA)",
-			Names: []string{"pmma", "plexiglass", "poly(methyl methacrylate)"},
+			Names: []string{"pmma", "poly(methyl methacrylate)"},
 			Group: Organic,
 			Rays: []Dispersion{
 				{Kind: Laurent, Coefficients: []float64{

@@ -261,7 +261,7 @@ func (r RayDescription) entries() []Entry {
 		coefficients[i] = strconv.FormatFloat(c, 'g', 10, 64)
 	}
 	formula := Entry{"formula", r.Formula + " with " + strings.Join(coefficients, ", "), r.Source}
-	if r.Fitted {
+	if r.Fitted && r.Dispersion != nil {
 		formula.Source = "fitted to the index and its dispersion; computed"
 	}
 	es := []Entry{{of, value, r.Source}, formula}
