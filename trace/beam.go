@@ -77,7 +77,12 @@ func (l *beam) decide(all, through, throw float64) (goes float64) {
 		*l = beam{}
 		return all
 	}
-	k := all / l.i
-	l.i, l.q, l.u, l.v = all, l.q*k, l.u*k, l.v*k
+	l.grow(all)
 	return 0
+}
+
+// grow gives the beam another power, in the same state of polarisation.
+func (l *beam) grow(power float64) {
+	k := power / l.i
+	l.i, l.q, l.u, l.v = power, l.q*k, l.u*k, l.v*k
 }

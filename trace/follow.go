@@ -1,6 +1,7 @@
 package trace
 
 import (
+	"fmt"
 	"math"
 
 	"pavilight/facets"
@@ -26,27 +27,67 @@ type tracer struct {
 
 	averaged bool    // the two polarisations are averaged at every facet
 	kernel   *kernel // the fast form; nil for float64 throughout
+	near     bool    // the eye stands at eyeAt; else it is far away
+	eyeAt    vec
 	bins     angleBins
 }
 
-func newTracer(s *facets.Stone, view View, head facets.Angle) (*tracer, error) {
+func newTracer(s *facets.Stone, settings Settings) (*tracer, error) {
 	b, err := newBody(s)
 	if err != nil {
 		return nil, err
 	}
-	t := &tracer{body: b, headCos: 2, faint: faintShare, bins: newAngleBins()}
-	if head > 0 {
-		t.headCos = math.Cos(head.Radians())
+	t := &tracer{body: b, headCos: 2, faint: faintShare, averaged: settings.Averaged, bins: newAngleBins()}
+	if settings.Head > 0 {
+		t.headCos = math.Cos(settings.Head.Radians())
 	}
+	f := settings.View.frame()
+	t.near = settings.Distance > 0
+	t.eyeAt = f.eye.scale(settings.Distance/b.unit).plus(settings.Aside/b.unit, f.right)
 	corners := make([]vec, len(s.Corners))
 	for i, c := range s.Corners {
-		corners[i] = fromMgl(c).plus(-1, b.middle).scale(1 / b.unit)
+		corners[i] = b.relative(c)
+		if t.near {
+			// As seen from there, on the picture's plane through the stone's middle.
+			rest := settings.Distance/b.unit - corners[i].dot(f.eye)
+			if rest < 1 {
+				return nil, fmt.Errorf("the eye, %g mm away, is too close to the stone: choose more than %.0f mm", settings.Distance, 2*b.unit)
+			}
+			corners[i] = t.eyeAt.plus(settings.Distance/b.unit/rest, corners[i].plus(-1, t.eyeAt))
+		}
 	}
-	t.outline = newOutline(b, view.frame(), corners)
+	t.outline = newOutline(b, f, corners)
 	for _, n := range b.normal {
 		t.toEye = append(t.toEye, n.dot(t.outline.eye))
 	}
 	return t, nil
+}
+
+// arrive returns where the viewing ray through (u, v) of the picture meets the stone,
+// on which facet and along which direction; ok is false where it passes beside.
+func (t *tracer) arrive(u, v float64) (facet int, x, d vec, ok bool) {
+	o := t.outline
+	if !t.near {
+		facet, x, ok = o.enter(u, v)
+		return facet, x, o.eye.scale(-1), ok
+	}
+	d = o.centre.plus(u, o.right).plus(v, o.up).plus(-1, t.eyeAt)
+	d = d.scale(1 / d.length())
+	facet, s, ok := t.body.entry(t.eyeAt, d)
+	return facet, t.eyeAt.plus(s, d), d, ok
+}
+
+// mask tells for each pixel of a picture of the outline's square, row by row from
+// the top left, whether its middle shows the stone.
+func (t *tracer) mask(pixels int) []bool {
+	inside := make([]bool, pixels*pixels)
+	step := 2 * t.outline.half / float64(pixels)
+	for row := range pixels {
+		for col := range pixels {
+			_, _, _, inside[row*pixels+col] = t.arrive((float64(col)+0.5)*step-t.outline.half, t.outline.half-(float64(row)+0.5)*step)
+		}
+	}
+	return inside
 }
 
 // follow sends one unit of viewing ray into the stone through a facet at x and

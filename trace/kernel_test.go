@@ -74,7 +74,7 @@ func TestKernelAgainstFloat64(t *testing.T) {
 		for _, averaged := range []bool{false, true} {
 			t.Run(fmt.Sprintf("%s averaged=%v", name, averaged), func(t *testing.T) {
 				view := View{Tilt: facets.Angle(1+rng.Float64()*30) * facets.Degree, Turn: facets.Angle(rng.Float64()*360) * facets.Degree}
-				tr, err := newTracer(s, view, 10*facets.Degree)
+				tr, err := newTracer(s, Settings{View: view, Head: 10 * facets.Degree})
 				if err != nil {
 					t.Fatal(err)
 				}

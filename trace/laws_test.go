@@ -13,7 +13,7 @@ import (
 // prepare makes a stone ready and lets no path end early.
 func prepare(t *testing.T, s *facets.Stone, view View, averaged bool) *tracer {
 	t.Helper()
-	tr, err := newTracer(s, view, 0)
+	tr, err := newTracer(s, Settings{View: view})
 	if err != nil {
 		t.Fatal(err)
 	}

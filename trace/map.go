@@ -1,38 +1,58 @@
 package trace
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // Map holds the ledger of every pixel of the picture, as seen from the eye. Row 0
 // is the top row, pixel (0, 0) the top left. The picture is a square about the
 // middle of the stone's outline, which touches its edges.
 type Map struct {
-	Pixels int     // of each edge
-	Span   float64 // mm across the whole picture
-	cells  []cell  // row by row
-	inside []bool  // the pixel's middle shows the stone; shared, never written again
+	Pixels int          // of each edge
+	Span   float64      // mm across the whole picture
+	cells  []cell       // row by row
+	colour [][3]float32 // sums of X, Y and Z likewise; nil where colour was not gathered
+	inside []bool       // the pixel's middle shows the stone; shared, never written again
 }
 
 // cell is what fell into one pixel: sums over its rays.
 type cell struct {
 	Ledger
-	rays int32
+	weight float64 // of the rays
+	rays   int32
+}
+
+func newMap(pixels int, span float64, inside []bool, colour bool) *Map {
+	m := &Map{Pixels: pixels, Span: span, cells: make([]cell, pixels*pixels), inside: inside}
+	if colour {
+		m.colour = make([][3]float32, pixels*pixels)
+	}
+	return m
 }
 
 func (m *Map) clone() *Map {
 	c := *m
-	c.cells = append([]cell(nil), m.cells...)
+	c.cells, c.colour = slices.Clone(m.cells), slices.Clone(m.colour)
 	return &c
 }
 
-func (m *Map) add(pixel int, l *Ledger) {
+func (m *Map) add(pixel int, weight float64, l *Ledger) {
 	c := &m.cells[pixel]
-	c.Surface += l.Surface
-	c.Returned += l.Returned
-	c.Head += l.Head
-	c.Leaked += l.Leaked
-	c.Absorbed += l.Absorbed
-	c.Unresolved += l.Unresolved
+	c.Surface += weight * l.Surface
+	c.Returned += weight * l.Returned
+	c.Head += weight * l.Head
+	c.Leaked += weight * l.Leaked
+	c.Absorbed += weight * l.Absorbed
+	c.Unresolved += weight * l.Unresolved
+	c.weight += weight
 	c.rays++
+}
+
+func (m *Map) addColour(pixel int, radiance float64, xyz [3]float64) {
+	for i := range xyz {
+		m.colour[pixel][i] += float32(radiance * xyz[i])
+	}
 }
 
 // At returns the mean ledger of the rays that fell into the pixel and their
@@ -42,7 +62,7 @@ func (m *Map) At(x, y int) (Ledger, int) {
 	if c.rays == 0 {
 		return Ledger{}, 0
 	}
-	k := 1 / float64(c.rays)
+	k := 1 / c.weight
 	return Ledger{c.Surface * k, c.Returned * k, c.Head * k, c.Leaked * k, c.Absorbed * k, c.Unresolved * k}, int(c.rays)
 }
 
@@ -57,27 +77,51 @@ func (m *Map) Inside(x, y int) bool {
 // pixel of the stone that no ray has met yet takes the mean of its surroundings,
 // so a coarse run gives a coarse picture; outside the outline the field is NaN.
 func (m *Map) Field(q Quantity) []float32 {
+	return m.filled(
+		func(i int) float32 { return float32(q.Of(m.cells[i].Ledger)) },
+		func(i int) float32 { return float32(m.cells[i].weight) })
+}
+
+// XYZ returns the CIE 1931 tristimulus values of every pixel, in the order and with
+// the gaps filled as by Field, relative to a white diffuser in the stone's place
+// under the same light, whose Y is 1. It returns nil where colour was not gathered.
+func (m *Map) XYZ() [][3]float32 {
+	if m.colour == nil {
+		return nil
+	}
+	xyz := make([][3]float32, len(m.cells))
+	for k := range 3 {
+		for i, v := range m.filled(
+			func(i int) float32 { return m.colour[i][k] },
+			func(i int) float32 { return float32(m.cells[i].rays) }) {
+			xyz[i][k] = v
+		}
+	}
+	return xyz
+}
+
+// filled returns sum over weight of every pixel.
+func (m *Map) filled(sum, weight func(pixel int) float32) []float32 {
 	base := layer{m.Pixels, make([]float32, len(m.cells)), make([]float32, len(m.cells))}
 	for i := range m.cells {
-		base.sum[i] = float32(q.Of(m.cells[i].Ledger))
-		base.rays[i] = float32(m.cells[i].rays)
+		base.sum[i], base.weight[i] = sum(i), weight(i)
 	}
 	base.fillFromCoarser()
 	for i := range base.sum {
 		if !m.inside[i] && m.cells[i].rays == 0 {
 			base.sum[i] = float32(math.NaN())
 		} else {
-			base.sum[i] /= base.rays[i]
+			base.sum[i] /= base.weight[i]
 		}
 	}
 	return base.sum
 }
 
-// layer is one level of a pyramid: sums and numbers of rays, so that a mean can
-// be had at any level.
+// layer is one level of a pyramid: sums and the weights of their rays, so that a mean
+// can be had at any level.
 type layer struct {
-	size      int
-	sum, rays []float32
+	size        int
+	sum, weight []float32
 }
 
 // fillFromCoarser gives each empty cell the mean of the coarser cell around it,
@@ -85,21 +129,21 @@ type layer struct {
 // nothing.
 func (l *layer) fillFromCoarser() {
 	if l.size == 1 {
-		if l.rays[0] == 0 {
-			l.rays[0] = 1
+		if l.weight[0] == 0 {
+			l.weight[0] = 1
 		}
 		return
 	}
 	empty := false
 	up := layer{size: (l.size + 1) / 2}
 	up.sum = make([]float32, up.size*up.size)
-	up.rays = make([]float32, up.size*up.size)
+	up.weight = make([]float32, up.size*up.size)
 	for y := range l.size {
 		for x := range l.size {
 			i, j := y*l.size+x, y/2*up.size+x/2
 			up.sum[j] += l.sum[i]
-			up.rays[j] += l.rays[i]
-			empty = empty || l.rays[i] == 0
+			up.weight[j] += l.weight[i]
+			empty = empty || l.weight[i] == 0
 		}
 	}
 	if !empty {
@@ -108,8 +152,8 @@ func (l *layer) fillFromCoarser() {
 	up.fillFromCoarser()
 	for y := range l.size {
 		for x := range l.size {
-			if i, j := y*l.size+x, y/2*up.size+x/2; l.rays[i] == 0 {
-				l.sum[i], l.rays[i] = up.sum[j]/up.rays[j], 1
+			if i, j := y*l.size+x, y/2*up.size+x/2; l.weight[i] == 0 {
+				l.sum[i], l.weight[i] = up.sum[j]/up.weight[j], 1
 			}
 		}
 	}

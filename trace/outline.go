@@ -86,16 +86,3 @@ func (o *outline) enter(u, v float64) (facet int, at vec, ok bool) {
 	}
 	return facet, o.centre.plus(u, o.right).plus(v, o.up).plus(-top, o.eye), true
 }
-
-// mask tells for each pixel of a picture of the outline's square, row by row from
-// the top left, whether its middle shows the stone.
-func (o *outline) mask(pixels int) []bool {
-	inside := make([]bool, pixels*pixels)
-	step := 2 * o.half / float64(pixels)
-	for row := range pixels {
-		for col := range pixels {
-			_, _, inside[row*pixels+col] = o.enter((float64(col)+0.5)*step-o.half, o.half-(float64(row)+0.5)*step)
-		}
-	}
-	return inside
-}

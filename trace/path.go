@@ -1,6 +1,7 @@
 package trace
 
 import (
+	"errors"
 	"math"
 
 	"github.com/go-gl/mathgl/mgl64"
@@ -46,12 +47,13 @@ const (
 	mostShown  = 500
 )
 
-// Follow follows the viewing ray through one point of the picture in one of the
-// scene's media, until less than 1e-4 of it is left inside or after 500 bounces.
-// x and y run from 0 to 1 across the picture from its top left corner; the
+// Follow follows the viewing ray of a distant eye through one point of the picture in
+// one of the scene's surroundings, which must be one medium all around, without films
+// and body colour, until less than 1e-4 of it is left inside or after 500 bounces. x
+// and y run from 0 to 1 across the picture from its top left corner; the
 // wavelength is the settings', the sodium D line for the spectrum. ok is false
 // where the ray passes beside the stone.
-func Follow(scene Scene, medium int, settings Settings, x, y float64) (p *Path, ok bool, err error) {
+func Follow(scene Scene, column int, settings Settings, x, y float64) (p *Path, ok bool, err error) {
 	if err := settings.check(); err != nil {
 		return nil, false, err
 	}
@@ -59,20 +61,28 @@ func Follow(scene Scene, medium int, settings Settings, x, y float64) (p *Path, 
 	if w == 0 {
 		w = gems.LineD
 	}
-	n, media, err := scene.indices(w)
+	around := scene.Surroundings[column]
+	if around.Dish || len(around.Tiers) > 0 {
+		return nil, false, errors.New("a single ray is followed in one medium all around only")
+	}
+	n, err := scene.Material.Index(w)
 	if err != nil {
 		return nil, false, err
 	}
-	t, err := newTracer(scene.Stone, settings.View, settings.Head)
+	m, err := around.Medium.Index(w)
 	if err != nil {
 		return nil, false, err
 	}
-	t.averaged = settings.Averaged
+	settings.Distance = 0
+	t, err := newTracer(scene.Stone, settings)
+	if err != nil {
+		return nil, false, err
+	}
 	facet, at, ok := t.outline.enter((2*x-1)*t.outline.half, (1-2*y)*t.outline.half)
 	if !ok {
 		return nil, false, nil
 	}
-	p = t.path(facet, at, n, media[medium])
+	p = t.path(facet, at, n, m)
 	p.Wavelength = w
 	return p, true, nil
 }
@@ -136,5 +146,8 @@ func (t *tracer) goes(up float64) Quantity {
 	return Returned
 }
 
-// place returns the point x of the body in the stone's frame, in mm.
+// place returns the point x of the body in the stone's frame, in mm; relative is its
+// inverse.
 func (b *body) place(x vec) mgl64.Vec3 { return b.middle.plus(b.unit, x).mgl() }
+
+func (b *body) relative(x mgl64.Vec3) vec { return fromMgl(x).plus(-1, b.middle).scale(1 / b.unit) }

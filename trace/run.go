@@ -1,97 +1,16 @@
-// Package trace follows light through a convex stone and keeps the ledger of
-// where it goes.
-//
-// Rays run from the eye back into the scene: light paths are reversible. A ray
-// that enters an isotropic convex stone never splits inside: at each facet a
-// known part leaves for good and the rest goes on.
-//
-// Viewer's frame. +Z to the eye, +X right, +Y up on every map; face-up, the
-// stone's index 0 (its +x) points up the picture and indices grow anticlockwise.
-// Up and down in the ledger are the viewer's.
 package trace
 
 import (
 	"context"
 	"errors"
-	"fmt"
 	"math"
 	"runtime"
 	"sync"
 	"sync/atomic"
 	"time"
 
-	"pavilight/facets"
 	"pavilight/gems"
 )
-
-// View is where the eye stands: its direction in the stone's frame is
-// (sin Tilt cos Turn, sin Tilt sin Turn, cos Tilt). The stone rocks about one
-// axis lying in the picture, without spin. Tilt lies in [0°, 90°).
-type View struct {
-	Tilt, Turn facets.Angle
-}
-
-// Scene is one stone and what it is traced in.
-type Scene struct {
-	Stone    *facets.Stone
-	Material *gems.Material   // what the stone is made of
-	Media    []*gems.Material // what surrounds stone, lights and eye; one column each
-}
-
-// Settings say how a scene is viewed and how long it is traced. The zero value
-// is face-up, without a head, over the spectrum, at the defaults named below.
-type Settings struct {
-	View       View
-	Head       facets.Angle    // half-angle of the cone that the viewer's head blocks; 0 for none
-	Wavelength gems.Wavelength // nm; 0 for the spectrum, equal energy weighted by V(lambda), 400 to 700 nm
-	Averaged   bool            // average the two polarisations at every facet instead of carrying the state of the light
-	Below      float64         // luminance of what lies under the stone, 0 to 1 (white paper)
-	Pixels     int             // of a map's edge; 0 means 300
-	Samples    int             // mean rays per pixel at which tracing stops; 0 means until Error is reached
-	Error      float64         // stop when the standard error of every ledger entry is below; 0 means 0.0005
-	Seed       uint64          // same seed, same result, for any number of workers
-	Workers    int             // goroutines that trace; 0 means all cores
-
-	exact bool // trace in float64, also where there is a fast kernel in float32
-}
-
-// Result is what a run found, one column a medium, in the scene's order.
-type Result struct {
-	Columns []Column
-	Rays    int           // that met the stone so far, the same for every column
-	Elapsed time.Duration // since the run began
-	Done    float64       // estimated share of the work done, 0 to 1; 1 in the final result
-}
-
-// Column is what was found in one medium.
-type Column struct {
-	Medium        *gems.Material
-	IndexStone    float64      // at the wavelength traced, at the D line for the spectrum
-	IndexMedium   float64      // likewise
-	Critical      facets.Angle // at those indices; meaningful only if HasCritical
-	HasCritical   bool         // false where the stone is not the denser side
-	Ledger        Ledger       // means over the outline as seen
-	StandardError Ledger       // of those means, from independent scramblings
-	Lit           Lit
-	From          [fromBins]float64 // returned + head by angle from the eye, bins of 5 degrees
-	FromError     [fromBins]float64 // their standard errors
-	LeakyArea     float64           // share of rays with leaked > 0.5
-	LeakyError    float64           // its standard error
-	WindowedArea  float64           // share of rays of which more than half leaves downward where they first meet the pavilion
-	WindowedError float64           // its standard error
-	Segments      int64             // facet hits inside the stone
-	Map           *Map
-}
-
-// Lit is the luminance under the even light, relative to a white diffuser that lies
-// in the same place facing the eye with no head in the way: its surface, returned
-// and leaked parts and their sum.
-type Lit struct {
-	Surface  float64 `json:"surface"`
-	Returned float64 `json:"returned"`
-	Leaked   float64 `json:"leaked"`
-	Sum      float64 `json:"sum"`
-}
 
 // Run traces the scene until the settings' error or samples are reached. It
 // calls report, which may be nil, between passes with all that is known so far,
@@ -147,14 +66,15 @@ type run struct {
 	pixelsInside float64 // how many pixels show the stone
 }
 
-// columnState is what one medium has gathered.
+// columnState is what one surrounding has gathered.
 type columnState struct {
 	scrambled [scramblings]sums
 	mapped    *Map
+	traveller *traveller // nil where the plain tracer will do
 }
 
 func newRun(scene Scene, settings Settings) (*run, error) {
-	if err := settings.check(); err != nil {
+	if err := errors.Join(settings.check(), scene.check()); err != nil {
 		return nil, err
 	}
 	if settings.Pixels == 0 {
@@ -170,85 +90,35 @@ func newRun(scene Scene, settings Settings) (*run, error) {
 
 	// Both ends of the range that will be asked for must be known; then all between are.
 	for _, w := range settings.wavelengths() {
-		if _, _, err := scene.indices(w); err != nil {
+		if err := scene.known(w); err != nil {
 			return nil, err
 		}
 	}
 	var err error
-	if r.tracer, err = newTracer(scene.Stone, settings.View, settings.Head); err != nil {
+	if r.tracer, err = newTracer(scene.Stone, settings); err != nil {
 		return nil, err
 	}
-	r.tracer.averaged = settings.Averaged
 	if !settings.exact {
 		r.tracer.kernel = newKernel(r.tracer)
 	}
 	for i := range r.points {
 		r.points[i] = newPoints(settings.Seed, i)
 	}
-	r.columns = make([]columnState, len(scene.Media))
-	inside := r.tracer.outline.mask(settings.Pixels)
+	inside := r.tracer.mask(settings.Pixels)
 	for _, in := range inside {
 		if in {
 			r.pixelsInside++
 		}
 	}
-	for i := range r.columns {
-		r.columns[i].mapped = &Map{
-			Pixels: settings.Pixels,
-			Span:   2 * r.tracer.outline.half * r.tracer.body.unit,
-			cells:  make([]cell, settings.Pixels*settings.Pixels),
-			inside: inside,
+	r.columns = make([]columnState, len(scene.Surroundings))
+	for k := range r.columns {
+		c := &r.columns[k]
+		c.mapped = newMap(settings.Pixels, 2*r.tracer.outline.half*r.tracer.body.unit, inside, settings.Colour)
+		if !scene.plain(k, settings) {
+			c.traveller = scene.traveller(k, settings, r.tracer)
 		}
 	}
 	return r, nil
-}
-
-// check refuses settings that mean nothing.
-func (s Settings) check() error {
-	in := func(name string, v, lo, hi float64) error {
-		if v >= lo && v <= hi {
-			return nil
-		}
-		return fmt.Errorf("%s %v is outside %v to %v", name, v, lo, hi)
-	}
-	tilt := math.Abs(s.View.Tilt.Degrees())
-	if !(tilt < 90) {
-		return fmt.Errorf("tilt %v is outside -90° to 90°", s.View.Tilt)
-	}
-	if math.IsNaN(s.View.Turn.Degrees()) || math.IsInf(s.View.Turn.Degrees(), 0) {
-		return fmt.Errorf("turn is no angle")
-	}
-	return errors.Join(
-		in("head angle", s.Head.Degrees(), 0, 90),
-		in("luminance below", s.Below, 0, 1),
-		in("number of pixels", float64(s.Pixels), 0, 8192),
-		in("samples a pixel", float64(s.Samples), 0, 1<<20),
-		in("error", s.Error, 0, 1),
-		in("number of workers", float64(s.Workers), 0, 1<<12),
-	)
-}
-
-// wavelengths returns the ends of the range to be traced.
-func (s Settings) wavelengths() []gems.Wavelength {
-	if s.Wavelength != 0 {
-		return []gems.Wavelength{s.Wavelength}
-	}
-	return []gems.Wavelength{gems.SpectrumWavelength(0), gems.SpectrumWavelength(1)}
-}
-
-// indices returns the index of the stone and of each medium at w.
-func (s Scene) indices(w gems.Wavelength) (stone float64, media []float64, err error) {
-	if stone, err = s.Material.Index(w); err != nil {
-		return 0, nil, err
-	}
-	for _, m := range s.Media {
-		n, err := m.Index(w)
-		if err != nil {
-			return 0, nil, err
-		}
-		media = append(media, n)
-	}
-	return stone, media, nil
 }
 
 // finished reports whether the settings are met.
@@ -331,8 +201,9 @@ func (r *run) pass(ctx context.Context) error {
 type chunk struct {
 	unit, scrambling int
 	entries          []entry
-	ledgers          [][]Ledger // by column, of each entry
-	sums             []sums     // by column
+	ledgers          [][]Ledger  // by column, of each entry
+	lit              [][]float64 // likewise the luminance seen, where colour is gathered
+	sums             []sums      // by column
 }
 
 // entry is one viewing ray where it meets the stone.
@@ -340,46 +211,91 @@ type entry struct {
 	point      uint32 // number of its sample point
 	facet      int32
 	pixel      int32
-	at         vec
+	at, along  vec
 	wavelength gems.Wavelength
+	xyz        [3]float64 // how the wavelength counts for X, Y and Z; Y is the ray's weight in every mean
 }
 
-// trace follows one chunk of points in every medium.
+// trace follows one chunk of points in every surrounding.
 func (r *run) trace(unit, scrambling, number int) *chunk {
-	c := &chunk{unit: unit, scrambling: scrambling}
+	c := &chunk{unit: unit, scrambling: scrambling, sums: make([]sums, len(r.columns))}
 	points := r.points[scrambling]
-	pixels, o := r.settings.Pixels, r.tracer.outline
 	for i := uint32(number * chunkPoints); i < uint32((number+1)*chunkPoints); i++ {
-		px, py, pw := points.at(i)
-		facet, x, ok := o.enter((2*px-1)*o.half, (2*py-1)*o.half)
-		if !ok {
-			continue
+		if e, ok := r.enter(points, i); ok {
+			c.entries = append(c.entries, e)
 		}
-		w := r.settings.Wavelength
-		if w == 0 {
-			w = gems.SpectrumWavelength(pw)
-		}
-		pixel := (pixels-1-int(py*float64(pixels)))*pixels + int(px*float64(pixels))
-		c.entries = append(c.entries, entry{i, int32(facet), int32(pixel), x, w})
 	}
-	rays := make([]ray, 0, len(r.scene.Media)*len(c.entries))
-	for k, medium := range r.scene.Media {
-		for i := range c.entries {
-			e := &c.entries[i]
-			// Both indices are known to be in range since newRun.
-			n, _ := r.scene.Material.Index(e.wavelength)
-			m, _ := medium.Index(e.wavelength)
-			rays = append(rays, ray{e.facet, int32(k), e.at, n, m, newDice(points, e.point, k)})
+	c.ledgers, c.lit = make([][]Ledger, len(r.columns)), make([][]float64, len(r.columns))
+	var rays []ray // of all plain columns, one after the other
+	for k := range r.columns {
+		if t := r.columns[k].traveller; t != nil {
+			c.ledgers[k], c.lit[k] = r.travel(t, points, k, c.entries, &c.sums[k])
+		} else {
+			rays = r.plainRays(rays, points, k, c.entries)
 		}
 	}
 	ledgers := make([]Ledger, len(rays))
-	c.sums = make([]sums, len(r.scene.Media))
 	r.tracer.followAll(rays, ledgers, c.sums)
-	for k := range c.sums {
-		c.sums[k][rayCount] = float64(len(c.entries))
-		c.ledgers = append(c.ledgers, ledgers[k*len(c.entries):(k+1)*len(c.entries)])
+	for k := range r.columns {
+		if r.columns[k].traveller == nil {
+			c.sums[k][rayCount] = float64(len(c.entries))
+			c.ledgers[k], ledgers = ledgers[:len(c.entries)], ledgers[len(c.entries):]
+		}
 	}
 	return c
+}
+
+// enter makes sample point i an entry; ok is false where it passes beside the stone.
+func (r *run) enter(points points, i uint32) (e entry, ok bool) {
+	px, py, pw := points.at(i)
+	o, pixels := r.tracer.outline, r.settings.Pixels
+	facet, x, d, ok := r.tracer.arrive((2*px-1)*o.half, (2*py-1)*o.half)
+	if !ok {
+		return entry{}, false
+	}
+	e = entry{point: i, facet: int32(facet), at: x, along: d, xyz: [3]float64{1, 1, 1}}
+	e.pixel = int32((pixels-1-int(py*float64(pixels)))*pixels + int(px*float64(pixels)))
+	switch {
+	case r.settings.Wavelength != 0:
+		e.wavelength = r.settings.Wavelength
+	case r.settings.Colour:
+		e.wavelength, e.xyz = colourWavelength(pw)
+	default:
+		e.wavelength = gems.SpectrumWavelength(pw)
+	}
+	return e, true
+}
+
+// plainRays appends a column's rays for the plain tracer. All indices are known to
+// exist since newRun.
+func (r *run) plainRays(rays []ray, points points, column int, entries []entry) []ray {
+	medium := r.scene.Surroundings[column].Medium
+	for i := range entries {
+		e := &entries[i]
+		n, _ := r.scene.Material.Index(e.wavelength)
+		m, _ := medium.Index(e.wavelength)
+		rays = append(rays, ray{e.facet, int32(column), e.at, n, m, newDice(points, e.point, column)})
+	}
+	return rays
+}
+
+// travel traces entries with a general tracer; lit is what is seen by each.
+func (r *run) travel(t *traveller, points points, column int, entries []entry, total *sums) (ledgers []Ledger, lit []float64) {
+	ledgers, lit = make([]Ledger, len(entries)), make([]float64, len(entries))
+	var at lambda
+	for i := range entries {
+		e := &entries[i]
+		t.look(e.wavelength, r.scene.Material, &at)
+		var one sums
+		ledgers[i] = t.send(int(e.facet), e.at, e.along, &at, newDice(points, e.point, column), &one)
+		one.addLedger(ledgers[i])
+		one[rayCount] = 1
+		lit[i] = one[litSurface] + one[litReturned] + one[litLeaked]
+		segments := one[segmentCount]
+		total.addWeighted(e.xyz[1], &one)
+		total[segmentCount] += segments - e.xyz[1]*segments // a count knows no weight
+	}
+	return ledgers, lit
 }
 
 // add takes a chunk into the run's sums and maps.
@@ -389,7 +305,11 @@ func (r *run) add(c *chunk) {
 		col := &r.columns[k]
 		col.scrambled[c.scrambling].add(&c.sums[k])
 		for i := range c.entries {
-			col.mapped.add(int(c.entries[i].pixel), &c.ledgers[k][i])
+			e := &c.entries[i]
+			col.mapped.add(int(e.pixel), e.xyz[1], &c.ledgers[k][i])
+			if r.settings.Colour {
+				col.mapped.addColour(int(e.pixel), c.lit[k][i], e.xyz)
+			}
 		}
 	}
 }
@@ -401,13 +321,10 @@ func (r *run) result() *Result {
 	if shown == 0 {
 		shown = gems.LineD
 	}
-	stone, media, _ := r.scene.indices(shown) // in range since newRun
 	for k := range r.columns {
 		mean, se := means(&r.columns[k].scrambled)
 		c := Column{
-			Medium:        r.scene.Media[k],
-			IndexStone:    stone,
-			IndexMedium:   media[k],
+			Surrounding:   r.scene.Surroundings[k],
 			Ledger:        mean.ledger(),
 			StandardError: se.ledger(),
 			Lit:           mean.lit(r.settings.Below),
@@ -416,6 +333,14 @@ func (r *run) result() *Result {
 			WindowedArea:  mean[windowedArea],
 			WindowedError: se[windowedArea],
 			Map:           r.columns[k].mapped.clone(),
+		}
+		c.IndexStone, _ = r.scene.Material.Index(shown) // both known to exist since newRun
+		c.IndexMedium, _ = c.Medium.Index(shown)
+		if r.columns[k].traveller != nil {
+			c.Lit = mean.litByLight()
+			if leaves := c.Ledger.Returned + c.Ledger.Head + c.Ledger.Leaked; leaves > 0 {
+				c.PathLength = mean[pathLength] / leaves * r.tracer.body.unit
+			}
 		}
 		for s := range r.columns[k].scrambled {
 			c.Segments += int64(r.columns[k].scrambled[s][segmentCount])

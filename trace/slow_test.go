@@ -208,7 +208,7 @@ func TestAgainstSlow(t *testing.T) {
 		for _, averaged := range []bool{false, true} {
 			for _, medium := range []float64{1, 1.333, 1.6} {
 				view := View{Tilt: facets.Angle(rng.Float64()*40) * facets.Degree, Turn: facets.Angle(rng.Float64()*360) * facets.Degree}
-				tr, err := newTracer(s, view, 10*facets.Degree)
+				tr, err := newTracer(s, Settings{View: view, Head: 10 * facets.Degree})
 				if err != nil {
 					t.Fatal(err)
 				}

@@ -12,9 +12,13 @@ const (
 	leakyArea                             // rays with leaked > 0.5
 	windowedArea                          // rays that see through the pavilion
 	segmentCount                          // facet hits inside the stone
-	rayCount
-	firstFrom // bins of returned + head by angle from the eye
-	slots     = firstFrom + fromBins
+	litSurface                            // luminance under a light: first surface,
+	litReturned                           // what is returned,
+	litLeaked                             // what shows from below
+	pathLength                            // inside the stone, weighted by power, in its own units
+	rayCount                              // or the rays' weights
+	firstFrom                             // bins of returned + head by angle from the eye
+	slots        = firstFrom + fromBins
 )
 
 // fromBins is how many bins of 5 degrees there are from the eye to the horizon.
@@ -32,6 +36,13 @@ func (s *sums) addLedger(l Ledger) {
 func (s *sums) add(o *sums) {
 	for i := range s {
 		s[i] += o[i]
+	}
+}
+
+// addWeighted adds k times o.
+func (s *sums) addWeighted(k float64, o *sums) {
+	for i := range s {
+		s[i] += k * o[i]
 	}
 }
 
@@ -70,6 +81,13 @@ func (s *sums) lit(below float64) Lit {
 		Returned: s[Returned],
 		Leaked:   below * s[Leaked],
 	}
+	l.Sum = l.Surface + l.Returned + l.Leaked
+	return l
+}
+
+// litByLight reads what the general tracer saw under its light.
+func (s *sums) litByLight() Lit {
+	l := Lit{Surface: s[litSurface], Returned: s[litReturned], Leaked: s[litLeaked]}
 	l.Sum = l.Surface + l.Returned + l.Leaked
 	return l
 }

@@ -4,7 +4,16 @@ import (
 	"math"
 
 	"github.com/go-gl/mathgl/mgl64"
+
+	"pavilight/facets"
 )
+
+// View is where the eye stands: its direction in the stone's frame is
+// (sin Tilt cos Turn, sin Tilt sin Turn, cos Tilt). The stone rocks about one
+// axis lying in the picture, without spin. Tilt lies in [0°, 90°).
+type View struct {
+	Tilt, Turn facets.Angle
+}
 
 // frame is the viewer's frame in the stone's coordinates: unit vectors to the
 // right and up the picture and toward the eye.

@@ -114,7 +114,7 @@ func (l *lookCommand) Run(c call) error {
 		}
 	}
 	bar := newProgress(c.env.Stderr, c.env.Terminal)
-	result, err := trace.Run(c, trace.Scene{Stone: s.stone, Material: s.material, Media: media}, settings,
+	result, err := trace.Run(c, trace.Scene{Stone: s.stone, Material: s.material, Surroundings: trace.Around(media...)}, settings,
 		func(r *trace.Result) { bar.show(r.Done) })
 	bar.clear()
 	if err != nil {

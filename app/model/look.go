@@ -264,7 +264,7 @@ func (l *Look) trail(ctx context.Context, r *run, row [Rows]trace.Quantity) erro
 		return solveError{err}
 	}
 	l.do(func() { l.solved(r, subject) })
-	scene := trace.Scene{Stone: subject.Stone, Material: subject.Material, Media: r.request.media}
+	scene := trace.Scene{Stone: subject.Stone, Material: subject.Material, Surroundings: trace.Around(r.request.media...)}
 	pace := newPace()
 	hand := func(result *trace.Result, final bool) {
 		f := l.paint(Frame{Subject: subject, Settings: r.request.settings, Media: r.request.media,

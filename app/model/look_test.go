@@ -73,8 +73,8 @@ func (e *engine) trace(ctx context.Context, scene trace.Scene, s trace.Settings,
 			return nil, context.Cause(ctx)
 		case share := <-e.step:
 			result := &trace.Result{Done: share}
-			for _, m := range scene.Media {
-				result.Columns = append(result.Columns, trace.Column{Medium: m, Map: &trace.Map{}})
+			for _, m := range scene.Surroundings {
+				result.Columns = append(result.Columns, trace.Column{Surrounding: m, Map: &trace.Map{}})
 			}
 			if share >= 1 {
 				return result, nil
@@ -320,8 +320,8 @@ func TestSettingsAndMediaReachTheRun(t *testing.T) {
 		s.Adjust(func(s *trace.Settings) { s.View.Tilt = 5 * facets.Degree })
 		s.window.settle()
 		last := s.engine.scenes[len(s.engine.scenes)-1]
-		if last.Media[1] != diamond || last.Media[0].Key != "air" {
-			t.Errorf("media of the run: %v", last.Media)
+		if last.Surroundings[1].Medium != diamond || last.Surroundings[0].Medium.Key != "air" {
+			t.Errorf("media of the run: %v", last.Surroundings)
 		}
 		runs := len(s.engine.scenes)
 		s.Adjust(func(*trace.Settings) {})

@@ -1,0 +1,183 @@
+package trace
+
+import (
+	"errors"
+	"fmt"
+	"math"
+	"slices"
+
+	"pavilight/facets"
+	"pavilight/gems"
+)
+
+// Scene is one stone and what it is traced in.
+type Scene struct {
+	Stone        *facets.Stone
+	Material     *gems.Material // what the stone is made of; its body colour counts
+	Surroundings []Surrounding  // one column each
+	Coatings     []Coating      // films on some tiers
+	Ground       *Ground        // something diffuse under the stone; nil for nothing
+	Setting      *Setting       // something diffuse behind the pavilion; nil for nothing
+}
+
+// Surrounding is what lies around the stone. With a Medium alone, stone, lights and
+// eye are all in it.
+type Surrounding struct {
+	Medium *gems.Material
+	Dish   bool // the medium is a liquid with a flat surface above the stone, across the line of sight; lights and eye are in air
+
+	// Tiers, where not empty, names the only tiers that touch Medium. All other
+	// facets touch Beyond.
+	Tiers  []string
+	Beyond *gems.Material
+}
+
+// Around returns surroundings in which each medium goes on for ever.
+func Around(media ...*gems.Material) []Surrounding {
+	s := make([]Surrounding, len(media))
+	for i, m := range media {
+		s[i].Medium = m
+	}
+	return s
+}
+
+// materials returns all that light may meet around the stone.
+func (s Surrounding) materials() []*gems.Material {
+	if len(s.Tiers) == 0 {
+		return []*gems.Material{s.Medium}
+	}
+	return []*gems.Material{s.Medium, s.Beyond}
+}
+
+// Coating is a film on every facet of some tiers.
+type Coating struct {
+	Tiers []string
+	Film
+}
+
+// Ground is a diffuse flat under the stone, across the line of sight: paper, a
+// cloth. It touches the stone's lowest point.
+type Ground struct {
+	Reflectance float64 // share of light that it sends back, by Lambert's law; 0 to 1
+}
+
+// Setting is a diffuse wall right behind the facets of the pavilion.
+type Setting struct {
+	Reflectance float64 // share of light that it sends back, by Lambert's law; 0 to 1
+	Open        float64 // share of the pavilion's depth, from the culet up, that it leaves open; 0 to 1
+}
+
+// liquidAbove is how far a dish's surface lies above the stone, in units of the
+// radius of the sphere that holds the stone. The surface is wide, so the height only
+// decides where light that it sends back meets the stone again.
+const liquidAbove = 0.5
+
+// plain reports whether column k is clean facets in one clear medium, under the even
+// light, seen from afar: what the fast tracer knows.
+func (s Scene) plain(k int, settings Settings) bool {
+	around := s.Surroundings[k]
+	return !around.Dish && len(around.Tiers) == 0 && len(s.Coatings) == 0 && s.Ground == nil && s.Setting == nil &&
+		s.Material.Absorption == nil && settings.Light == nil && settings.Distance == 0 && !settings.Colour && !settings.Paths
+}
+
+// check refuses a scene that means nothing.
+func (s Scene) check() error {
+	share := func(name string, v float64) error {
+		if v >= 0 && v <= 1 {
+			return nil
+		}
+		return fmt.Errorf("%s %v is outside 0 to 1", name, v)
+	}
+	var faults []error
+	if s.Ground != nil {
+		faults = append(faults, share("reflectance of the ground", s.Ground.Reflectance))
+	}
+	if s.Setting != nil {
+		faults = append(faults, share("reflectance of the setting", s.Setting.Reflectance), share("open part of the setting", s.Setting.Open))
+	}
+	for _, c := range s.Coatings {
+		faults = append(faults, s.tiersExist("film", c.Tiers))
+		if !(c.Index >= 1 && c.Index <= 5) {
+			faults = append(faults, fmt.Errorf("index %v of a film is outside 1 to 5", c.Index))
+		}
+		if !(c.Extinction >= 0 && c.Extinction <= 10) {
+			faults = append(faults, fmt.Errorf("extinction %v of a film is outside 0 to 10", c.Extinction))
+		}
+		if !(c.Thickness >= 0 && c.Thickness <= 1e6) {
+			faults = append(faults, fmt.Errorf("thickness %v nm of a film is outside 0 to 1,000,000", c.Thickness))
+		}
+	}
+	for _, around := range s.Surroundings {
+		if around.Dish && len(around.Tiers) > 0 {
+			faults = append(faults, errors.New("a stone in a dish is wetted all over: choose the dish or some tiers"))
+		}
+		faults = append(faults, s.tiersExist("liquid", around.Tiers))
+	}
+	return errors.Join(faults...)
+}
+
+func (s Scene) tiersExist(what string, tiers []string) error {
+	for _, name := range tiers {
+		if !slices.ContainsFunc(s.Stone.Facets, func(f facets.Facet) bool { return f.Tier == name }) {
+			return fmt.Errorf("%s on tier %q: the stone has no facet of that tier", what, name)
+		}
+	}
+	return nil
+}
+
+// known fails where the stone or a medium has no index at w.
+func (s Scene) known(w gems.Wavelength) error {
+	if _, err := s.Material.Index(w); err != nil {
+		return err
+	}
+	for _, around := range s.Surroundings {
+		for _, m := range around.materials() {
+			if _, err := m.Index(w); err != nil {
+				return err
+			}
+		}
+	}
+	return nil
+}
+
+// traveller returns the general tracer for column k.
+func (s Scene) traveller(k int, settings Settings, plain *tracer) *traveller {
+	around := s.Surroundings[k]
+	t := &traveller{tracer: plain, colour: s.Material.Absorption, light: settings.Light, below: settings.Below}
+	for _, f := range s.Stone.Facets {
+		medium := around.Medium
+		if len(around.Tiers) > 0 && !slices.Contains(around.Tiers, f.Tier) {
+			medium = around.Beyond
+		}
+		t.medium = append(t.medium, medium)
+		var film *Film
+		for i := range s.Coatings {
+			if slices.Contains(s.Coatings[i].Tiers, f.Tier) {
+				film = &s.Coatings[i].Film
+			}
+		}
+		t.film = append(t.film, film)
+	}
+	lowest, highest := math.Inf(1), math.Inf(-1) // along the line of sight
+	culet, girdle := math.Inf(1), math.Inf(-1)   // along the stone's axis, of the pavilion
+	for _, f := range s.Stone.Facets {
+		for _, c := range f.Corners {
+			x := plain.body.relative(s.Stone.Corners[c])
+			h := x.dot(plain.outline.eye)
+			lowest, highest = min(lowest, h), max(highest, h)
+			if f.Side == facets.Pavilion {
+				culet, girdle = min(culet, x.z), max(girdle, x.z)
+			}
+		}
+	}
+	if around.Dish {
+		t.dish = &dish{around.Medium, highest + liquidAbove}
+	}
+	if s.Ground != nil {
+		t.under = &under{s.Ground.Reflectance, lowest}
+	}
+	if s.Setting != nil {
+		t.cup = &cup{s.Setting.Reflectance, culet + s.Setting.Open*(girdle-culet)}
+	}
+	return t
+}

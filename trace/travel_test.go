@@ -1,0 +1,142 @@
+package trace
+
+import (
+	"math"
+	"math/rand/v2"
+	"testing"
+
+	"pavilight/facets"
+	"pavilight/gems"
+)
+
+// general returns a traveller for a stone wholly in one medium.
+func general(t *testing.T, s *facets.Stone, view View, medium *gems.Material, averaged bool) *traveller {
+	t.Helper()
+	tr := &traveller{tracer: prepare(t, s, view, averaged)}
+	for range s.Facets {
+		tr.medium = append(tr.medium, medium)
+		tr.film = append(tr.film, nil)
+	}
+	return tr
+}
+
+func at550(tr *traveller, stone *gems.Material) *lambda {
+	var at lambda
+	tr.look(550, stone, &at)
+	return &at
+}
+
+// TestTravellerAgrees compares the general tracer with the plain one ray by ray where
+// both can: one medium all around.
+func TestTravellerAgrees(t *testing.T) {
+	rng := rand.New(rand.NewPCG(5, 6))
+	stone, water := plain(t, "stone", 1.62), plain(t, "water", 1.333)
+	for name, s := range stones(t) {
+		for _, averaged := range []bool{false, true} {
+			view := View{Tilt: facets.Angle(rng.Float64()) / 2, Turn: facets.Angle(rng.Float64() * 6)}
+			tr := general(t, s, view, water, averaged)
+			tr.headCos = math.Cos(10 * math.Pi / 180)
+			for range 10 {
+				facet, x, ok := tr.outline.enter(tr.outline.half*(2*rng.Float64()-1), tr.outline.half*(2*rng.Float64()-1))
+				if !ok {
+					continue
+				}
+				var a, b sums
+				want := tr.follow(facet, x, 1.62, 1.333, 0, &a)
+				got := tr.send(facet, x, tr.outline.eye.scale(-1), at550(tr, stone), 0, &b)
+				for q := Surface; q < quantities; q++ {
+					near(t, name+": "+q.String(), q.Of(got), q.Of(want), 1e-11, "the plain tracer")
+				}
+				for _, i := range []int{leakyArea, windowedArea, firstFrom, firstFrom + 5} {
+					near(t, name+": sums", b[i], a[i], 1e-11, "the plain tracer")
+				}
+			}
+		}
+	}
+}
+
+// TestDish checks the flat surface of a liquid above the stone.
+func TestDish(t *testing.T) {
+	rng := rand.New(rand.NewPCG(8, 1))
+	for name, s := range stones(t) {
+		for _, row := range []struct{ liquid, stone float64 }{{1, 1.62}, {1.477, 1.62}, {1.477, 1.477}, {1.74, 1.62}} {
+			liquid, stone := plain(t, "liquid", row.liquid), plain(t, "stone", row.stone)
+			tr := general(t, s, View{Tilt: 0.1, Turn: 2}, liquid, false)
+			tr.dish = &dish{liquid, 1.5}
+			tr.faint = 1e-3
+			for i := range 8 {
+				facet, x, ok := tr.outline.enter(tr.outline.half*(2*rng.Float64()-1), tr.outline.half*(2*rng.Float64()-1))
+				if !ok {
+					continue
+				}
+				var a, b sums
+				got := tr.send(facet, x, tr.outline.eye.scale(-1), at550(tr, stone), dice(i), &b)
+				near(t, name+": sum", got.Sum(), 1, 1e-9, "light is neither made nor lost")
+				first := math.Pow((row.liquid-1)/(row.liquid+1), 2)
+				near(t, name+": surface", got.Surface, first, 1e-12, "normal incidence on the liquid")
+				switch {
+				case row.liquid == 1:
+					want := tr.follow(facet, x, row.stone, 1, dice(i), &a)
+					want.Returned, want.Surface = want.Returned+want.Surface, 0
+					if up := 2*tr.toEye[facet]*tr.toEye[facet] - 1; up > 0 {
+						near(t, name+": returned", got.Returned, want.Returned, 1.1e-3, "a dish of air is no dish, but for what the stone mirrors")
+						near(t, name+": leaked", got.Leaked, want.Leaked, 1.1e-3, "a dish of air is no dish")
+					}
+				case row.liquid == row.stone:
+					near(t, name+": leaked", got.Leaked, 1-first, 1e-12, "a stone in its own index is not there")
+				}
+			}
+		}
+	}
+}
+
+// TestBodyColour is the plate again, with absorption.
+func TestBodyColour(t *testing.T) {
+	s := solid(t, box(200, 200, 0.5)) // 1 mm thick
+	tr := general(t, s, View{}, plain(t, "air", 1), false)
+	at := at550(tr, plain(t, "stone", 1.7))
+	const natural = 0.35 // per mm
+	at.absorb = natural * tr.body.unit
+	facet, x, _ := tr.outline.enter(0, 0)
+	var b sums
+	l := tr.send(facet, x, tr.outline.eye.scale(-1), at, 0, &b)
+	r, a := math.Pow(0.7/2.7, 2), math.Exp(-natural)
+	const source = "Beer-Lambert law in the geometric series of a plate"
+	through := (1 - r) * (1 - r) * a / (1 - r*r*a*a)
+	back := r + (1-r)*(1-r)*a*a*r/(1-r*r*a*a)
+	near(t, "through", l.Leaked, through, 1e-12, source)
+	near(t, "back", l.Surface+l.Returned, back, 1e-12, source)
+	near(t, "absorbed", l.Absorbed, 1-through-back, 1e-12, source)
+}
+
+// TestGround puts something diffuse under the stone.
+func TestGround(t *testing.T) {
+	air, stone := plain(t, "air", 1), plain(t, "stone", 1.54)
+	for name, s := range stones(t) {
+		for i := range 6 {
+			tr := general(t, s, View{}, air, true)
+			tr.faint = 1e-3
+			facet, x, ok := tr.outline.enter(tr.outline.half*0.1*float64(i-3), tr.outline.half*0.07)
+			if !ok {
+				continue
+			}
+			var b sums
+			send := func() Ledger {
+				return tr.send(facet, x, tr.outline.eye.scale(-1), at550(tr, stone), dice(i), &b)
+			}
+			bare := send()
+			tr.under = &under{0, -1}
+			black := send()
+			near(t, name+": black paper", black.Leaked, bare.Leaked, 2e-3, "black paper sends nothing back")
+			tr.under = &under{0.8, -1}
+			grey := send()
+			near(t, name+": sum over grey paper", grey.Sum(), 1, 1e-9, "light is neither made nor lost")
+			tr.under = &under{1, -1}
+			white := send()
+			near(t, name+": leaked over white paper", white.Leaked, 0, 0, "white paper takes nothing")
+			tr.under, tr.cup = nil, &cup{1, -2}
+			set := send()
+			near(t, name+": sum in a setting", set.Sum(), 1, 1e-9, "light is neither made nor lost")
+		}
+	}
+}
