@@ -7,8 +7,7 @@ import (
 	"os"
 	"runtime"
 
-	"fyne.io/fyne/v2/app"
-	"fyne.io/fyne/v2/widget"
+	"pavilight/app/ui"
 )
 
 // openWindow opens the window on the plan or scan of the given path, on the bundled
@@ -17,9 +16,8 @@ func openWindow(ctx context.Context, path string) error {
 	if err := displayAnswers(runtime.GOOS, os.Getenv); err != nil {
 		return err
 	}
-	a := app.NewWithID("org.pavilight")
-	w := a.NewWindow("Pavilight")
-	w.SetContent(widget.NewLabel(path))
-	w.ShowAndRun()
-	return nil
+	if err := openGLAnswers(); err != nil {
+		return err
+	}
+	return ui.Run(ctx, ui.Options{Path: path})
 }

@@ -41,7 +41,8 @@ func (f *subjectFlags) subject(c call) (*subject, error) {
 	if err != nil {
 		var faults facets.Faults
 		var one *facets.Fault
-		if errors.As(err, &faults) || errors.As(err, &one) {
+		var told *fault
+		if !errors.As(err, &told) && (errors.As(err, &faults) || errors.As(err, &one)) {
 			return nil, inputFault(err)
 		}
 		return nil, err
@@ -75,7 +76,7 @@ func (f *subjectFlags) oneSource() error {
 func (f *subjectFlags) solve(c call) (*subject, error) {
 	switch {
 	case f.Round != "" || f.Outline != "":
-		return f.measured()
+		return f.measured(c)
 	case f.Plan == "":
 		plan, err := bundled()
 		if err != nil {
@@ -240,7 +241,29 @@ func (f *subjectFlags) namedMaterial() (*gems.Material, error) {
 	return m, nil
 }
 
+// usualWidth is the width in mm of a measured stone whose width nobody gave. Shares and
+// percentages do not depend on it.
+const usualWidth = 10
+
 // measured makes a stone from measured proportions.
-func (f *subjectFlags) measured() (*subject, error) {
-	return nil, commandFaultf("--round and --outline are not read yet; name a plan or a scan")
+func (f *subjectFlags) measured(c call) (*subject, error) {
+	outline, values := f.Outline, f.Proportions
+	if f.Round != "" {
+		outline, values = "round", f.Round
+	}
+	proportions, err := facets.ParseProportions(outline, values)
+	if err != nil {
+		return nil, commandFault(err)
+	}
+	s := &subject{name: outline + " by its proportions"}
+	if s.material, err = f.namedMaterial(); err != nil {
+		return nil, err
+	}
+	width := f.Width
+	if width == 0 {
+		width = usualWidth
+		c.warn("No --width: the stone is taken as %d mm wide.", usualWidth)
+	}
+	s.stone, err = proportions.Stone(width)
+	return s, err
 }

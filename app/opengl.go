@@ -1,0 +1,42 @@
+//go:build cgo
+
+package main
+
+import (
+	"fmt"
+
+	"github.com/go-gl/glfw/v3.4/glfw"
+)
+
+// openGLAnswers returns nil if a window with OpenGL can be had, by trying one that is
+// never shown. The window library itself would wait for ever where there is none, as
+// on a remote screen without GLX. It must run on the main thread.
+func openGLAnswers() error {
+	// The library may choose X11 where Wayland is there too: only if both fail is
+	// there no window.
+	err := hiddenWindow(glfw.AnyPlatform)
+	if err != nil && hiddenWindow(glfw.PlatformX11) == nil {
+		err = nil
+	}
+	glfw.InitHint(glfw.PlatformHint, int(glfw.AnyPlatform))
+	if err != nil {
+		return fmt.Errorf("this display gives no window with OpenGL (%w); "+
+			"the commands work without one (see pavilight --help)", err)
+	}
+	return nil
+}
+
+func hiddenWindow(platform glfw.Platform) error {
+	glfw.InitHint(glfw.PlatformHint, int(platform))
+	if err := glfw.Init(); err != nil {
+		return err
+	}
+	defer glfw.Terminate()
+	glfw.WindowHint(glfw.Visible, glfw.False)
+	window, err := glfw.CreateWindow(16, 16, "Pavilight", nil, nil)
+	if err != nil {
+		return err
+	}
+	window.Destroy()
+	return nil
+}
