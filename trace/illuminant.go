@@ -47,17 +47,17 @@ func (s *Illuminant) At(w gems.Wavelength) float64 {
 
 // White returns the tristimulus values, CIE 1931 and over 400 to 700 nm, of a perfect
 // white diffuser under the illuminant; Y is 1.
-func (s *Illuminant) White() [3]float64 { return s.tristimulus(tracedFrom, tracedTo) }
+func (s *Illuminant) White() [3]float64 { return tristimulus(tracedFrom, tracedTo, s.At) }
 
-// tristimulus integrates the spectrum between two rows of the table, so that equal
-// energy over the traced range has Y = 1. Both factors are straight between rows:
-// Simpson's rule is exact for their product, and the mean of sampled wavelengths
-// tends to the same value.
-func (s *Illuminant) tristimulus(from, to int) (xyz [3]float64) {
+// tristimulus integrates a spectrum between two rows of the table, in units in which
+// equal energy over the traced range has Y = 1. Simpson's rule is exact for products of
+// up to three functions that run straight between rows, so the mean of sampled
+// wavelengths tends to the same values.
+func tristimulus(from, to int, spectrum func(gems.Wavelength) float64) (xyz [3]float64) {
 	for i := from; i < to; i++ {
 		lo := tableLo + tableStep*gems.Wavelength(i)
 		for k, w := range [...]gems.Wavelength{lo, lo + tableStep/2.0, lo + tableStep} {
-			weight := [...]float64{1, 4, 1}[k] / 6 * tableStep * s.At(w) / luminousIntegral
+			weight := [...]float64{1, 4, 1}[k] / 6 * tableStep * spectrum(w) / luminousIntegral
 			x, y, z := gems.Observer(w)
 			xyz[0] += weight * x
 			xyz[1] += weight * y
