@@ -131,9 +131,8 @@ func (p *Proportions) brilliantPlanes() ([]Plane, *Fault) {
 		planes = append(planes, through(tierStar, Crown, corners[i], corners[j], tip))
 		high := (upper[i] + upper[j]) / 2
 		end := b.keelEnd(from.below.Add(to.below))
-		lowPoint := onOutline(b.between[i], end, crossing2(from.pavilion(), to.pavilion()))
-		lowAlong := lowPoint.Sub(end).Normalize()
-		lowTip := onMains(pavilion[i], pavilion[j], lowAlong, lowAlong.Dot(end)+(1-share("lower", i))*lowPoint.Sub(end).Len())
+		lowAlong := crossing2(from.pavilion(), to.pavilion()).Sub(end).Normalize()
+		lowTip := onMains(pavilion[i], pavilion[j], lowAlong, lowAlong.Dot(end)+(1-share("lower", i))*lowAlong.Dot(girdlePoint.Sub(end)))
 		low := (lower[i] + lower[j]) / 2
 		if b.straight[i] {
 			planes = append(planes,
@@ -144,8 +143,8 @@ func (p *Proportions) brilliantPlanes() ([]Plane, *Fault) {
 		planes = append(planes,
 			through(tierUpperHalf, Crown, from.at.Vec3(upper[i]), girdlePoint.Vec3(high), tip),
 			through(tierUpperHalf, Crown, girdlePoint.Vec3(high), to.at.Vec3(upper[j]), tip),
-			through(tierLowerHalf, Pavilion, from.at.Vec3(lower[i]), lowPoint.Vec3(low), lowTip),
-			through(tierLowerHalf, Pavilion, lowPoint.Vec3(low), to.at.Vec3(lower[j]), lowTip))
+			through(tierLowerHalf, Pavilion, from.at.Vec3(lower[i]), girdlePoint.Vec3(low), lowTip),
+			through(tierLowerHalf, Pavilion, girdlePoint.Vec3(low), to.at.Vec3(lower[j]), lowTip))
 	}
 	if meanGirdle > 0 {
 		for _, ring := range b.between {
