@@ -15,11 +15,11 @@ import (
 // 41 deg 48 min, 41° 48' 30". Degrees must be whole where minutes follow, and
 // minutes whole where seconds follow. The error says what was expected.
 func ParseAngle(text string) (facets.Angle, error) {
+	const example = "write it as 41.8, 41,8 or 41°48'"
 	parts, err := numbersWithUnits(text)
 	if err != nil {
-		return 0, err
+		return 0, fmt.Errorf("%w; %s", err, example)
 	}
-	const example = "write it as 41.8, 41,8 or 41°48'"
 	if len(parts) == 0 {
 		return 0, errors.New("no angle given; " + example)
 	}
@@ -65,7 +65,7 @@ func ParseNumber(text, unit string) (float64, error) {
 	text = strings.TrimSpace(strings.TrimSuffix(strings.TrimSpace(text), unit))
 	parts, err := numbersWithUnits(text)
 	if err != nil {
-		return 0, err
+		return 0, fmt.Errorf("%w; write it as 8.5 or 8,5", err)
 	}
 	if len(parts) != 1 || parts[0].unit != "" {
 		return 0, fmt.Errorf("%q is not a number; write it as 8.5 or 8,5", text)

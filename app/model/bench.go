@@ -121,7 +121,7 @@ func (b *Bench) Tiers() []TierRow {
 	if err != nil {
 		material = b.Look.Subject.Material
 	}
-	return b.tiers.rows(b.Doc.Plan(), b.Look.Subject.Stone, criticalTicks(material, b.Look.Media))
+	return b.tiers.rows(b.Doc.Plan(), b.Look.Subject.Stone, criticalTicks(material, b.Look.Around))
 }
 
 // SetAngle gives a tier another angle. With merge the step joins the one before if
@@ -172,10 +172,10 @@ func (b *Bench) SetMaterial(m *gems.Material) {
 	b.show()
 }
 
-// SetMedium puts another surrounding into a column of the maps.
-func (b *Bench) SetMedium(column int, m *gems.Material) {
+// SetAround puts another surrounding into a column of the maps.
+func (b *Bench) SetAround(column int, a Around) {
 	b.tiers.forget()
-	b.Look.SetMedium(column, m)
+	b.Look.SetAround(column, a)
 	b.onChange()
 }
 

@@ -22,6 +22,21 @@ type Subject struct {
 	Measures facets.Measures
 }
 
+// Around is what surrounds the stone in one column.
+type Around struct {
+	Medium *gems.Material
+	Dish   bool // the stone lies in a dish of the medium and is seen through its surface, from air
+}
+
+// surroundings returns the columns as the tracer takes them.
+func surroundings(around []Around) []trace.Surrounding {
+	s := make([]trace.Surrounding, len(around))
+	for i, a := range around {
+		s[i] = trace.Surrounding{Medium: a.Medium, Dish: a.Dish}
+	}
+	return s
+}
+
 // Rows is how many quantities the grid of maps shows at once.
 const Rows = 2
 
@@ -30,12 +45,14 @@ const Rows = 2
 // as that has given its first, coarse answer, and starts another; a stone that
 // cannot be had leaves the last good one where it is.
 type Look struct {
-	Subject Subject          // the last stone that could be had; its Stone is nil before the first
-	Frame   *Frame           // the maps; nil before the first answer
-	Trouble error            // why the latest plan or settings could not be shown; nil if they are
-	Media   []*gems.Material // one column each
+	Subject Subject  // the last stone that could be had; its Stone is nil before the first
+	Frame   *Frame   // the maps; nil before the first answer
+	Trouble error    // why the latest plan or settings could not be shown; nil if they are
+	Around  []Around // one column each
 	Row     [Rows]trace.Quantity
 	Pointer Pointer
+	Ray     *Ray   // the ray that is followed; nil for none
+	Strip   *Strip // how it looks when rocked; nil before the first maps are refined
 
 	do       func(func())
 	onChange func(Change)
@@ -60,6 +77,8 @@ const (
 	MapsChanged                  // Frame, and with it the ledger
 	StateChanged                 // Progress
 	PointerChanged               // Pointer
+	RayChanged                   // Ray
+	StripChanged                 // Strip
 )
 
 // Pointer is where the maps are being asked, in shares of the picture from its top
@@ -74,7 +93,7 @@ type Pointer struct {
 type Frame struct {
 	Subject  Subject
 	Settings trace.Settings
-	Media    []*gems.Material
+	Around   []Around
 	Result   *trace.Result
 	Row      [Rows]trace.Quantity
 	Fields   [Rows][][]float32   // by row and column, as trace.Map.Field gives them
@@ -89,8 +108,9 @@ type tracing func(context.Context, trace.Scene, trace.Settings, func(*trace.Resu
 type request struct {
 	solve    func() (Subject, error)
 	settings trace.Settings
-	media    []*gems.Material
-	lastGood bool // not the latest plan, which cannot be had, but the stone before it
+	around   []Around
+	strip    *Strip // the last that is complete, which need not be traced again; may be nil
+	lastGood bool   // not the latest plan, which cannot be had, but the stone before it
 }
 
 // run is one run under way. Its fields belong to the window's goroutine, but for
@@ -133,7 +153,7 @@ func NewLook(do func(func()), onChange func(Change)) (*Look, error) {
 		if err != nil {
 			return nil, err
 		}
-		l.Media = append(l.Media, m)
+		l.Around = append(l.Around, Around{Medium: m})
 	}
 	for q := range l.maps {
 		l.maps[q] = colourMap(trace.Quantity(q))
@@ -156,7 +176,7 @@ func (l *Look) ColourMap(row int) *picture.ColourMap { return l.maps[l.Row[row]]
 // Show asks for the maps of another stone. solve is called once or more often, on
 // another goroutine.
 func (l *Look) Show(solve func() (Subject, error)) {
-	l.latest = request{solve: solve, settings: l.settings, media: l.Media}
+	l.latest = request{solve: solve, settings: l.settings, around: l.Around}
 	l.restart()
 }
 
@@ -174,11 +194,14 @@ func (l *Look) Adjust(change func(*trace.Settings)) {
 	l.restart()
 }
 
-// SetMedium puts another surrounding into a column and traces anew.
-func (l *Look) SetMedium(column int, m *gems.Material) {
-	media := append([]*gems.Material(nil), l.Media...)
-	media[column] = m
-	l.Media, l.latest.media = media, media
+// SetAround puts another surrounding into a column and traces anew.
+func (l *Look) SetAround(column int, a Around) {
+	if l.Around[column] == a {
+		return
+	}
+	around := slices.Clone(l.Around)
+	around[column] = a
+	l.Around, l.latest.around = around, around
 	l.restart()
 }
 
@@ -242,6 +265,9 @@ func (l *Look) advance() {
 func (l *Look) start(q request) {
 	ctx, cancel := context.WithCancel(context.Background())
 	l.number++
+	if l.Strip != nil && l.Strip.Done {
+		q.strip = l.Strip
+	}
 	r := &run{number: l.number, request: q, cancel: cancel, finished: make(chan struct{})}
 	l.running = r
 	row := l.Row
@@ -264,10 +290,10 @@ func (l *Look) trail(ctx context.Context, r *run, row [Rows]trace.Quantity) erro
 		return solveError{err}
 	}
 	l.do(func() { l.solved(r, subject) })
-	scene := trace.Scene{Stone: subject.Stone, Material: subject.Material, Surroundings: trace.Around(r.request.media...)}
+	scene := trace.Scene{Stone: subject.Stone, Material: subject.Material, Surroundings: surroundings(r.request.around)}
 	pace := newPace()
 	hand := func(result *trace.Result, final bool) {
-		f := l.paint(Frame{Subject: subject, Settings: r.request.settings, Media: r.request.media,
+		f := l.paint(Frame{Subject: subject, Settings: r.request.settings, Around: r.request.around,
 			Result: result, Row: row, Final: final})
 		if late := r.pending.Swap(f); late != nil {
 			l.buffers.giveBack(late) // nobody has seen it; the new one takes its turn
@@ -280,10 +306,23 @@ func (l *Look) trail(ctx context.Context, r *run, row [Rows]trace.Quantity) erro
 			hand(result, false)
 		}
 	})
-	if err == nil {
-		hand(result, true)
+	if err != nil {
+		return err
 	}
-	return err
+	hand(result, true)
+	strip := newStrip(subject, r.request.settings, r.request.around, StripRange)
+	if strip.like(r.request.strip) {
+		return nil
+	}
+	return l.traceStrip(ctx, strip, func(s *Strip) { l.do(func() { l.rocked(r, s) }) })
+}
+
+// rocked takes a strip, as far as it has come.
+func (l *Look) rocked(r *run, s *Strip) {
+	if !l.stale(r) && !l.stopped {
+		l.Strip = s
+		l.onChange(StripChanged)
+	}
 }
 
 // pace spaces the frames of a run: the first at once, then ten a second, and four
@@ -373,10 +412,14 @@ func (l *Look) arrived(r *run, f *Frame) {
 }
 
 func (l *Look) show(f *Frame) {
-	if l.Frame != nil {
-		l.buffers.giveBack(l.Frame)
+	before := l.Frame
+	if before != nil {
+		l.buffers.giveBack(before)
 	}
 	l.Frame = f
+	if before == nil || before.Subject != f.Subject || before.Settings != f.Settings || !slices.Equal(before.Around, f.Around) {
+		l.followAgain()
+	}
 }
 
 // ended takes the end of a run, however it came.
@@ -405,7 +448,7 @@ func (l *Look) ended(r *run, err error) {
 func (l *Look) finishLastGood(failed *run) {
 	good, q := l.Subject, failed.request
 	if l.waiting || good.Stone == nil || l.Frame != nil && l.Frame.Final && l.Frame.Subject == good &&
-		l.Frame.Settings == q.settings && slices.Equal(l.Frame.Media, q.media) {
+		l.Frame.Settings == q.settings && slices.Equal(l.Frame.Around, q.around) {
 		return
 	}
 	q.solve = func() (Subject, error) { return good, nil }
@@ -424,7 +467,8 @@ type Progress struct {
 
 // Progress returns how far the maps have come.
 func (l *Look) Progress() Progress {
-	p := Progress{Active: l.running != nil || l.waiting, Stopped: l.stopped && (l.Frame == nil || !l.Frame.Final)}
+	refined := l.running != nil && l.Frame != nil && l.Frame.Final && l.running.share == 1
+	p := Progress{Active: l.running != nil && !refined || l.waiting, Stopped: l.stopped && (l.Frame == nil || !l.Frame.Final)}
 	switch {
 	case l.running != nil:
 		p.Share = l.running.share

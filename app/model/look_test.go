@@ -47,10 +47,12 @@ func (w *window) settle() {
 	}
 }
 
-// engine stands in for trace.Run: it reports when it is told to.
+// engine stands in for trace.Run: it reports when it is told to. The strip's runs,
+// which want no reports, it answers at once.
 type engine struct {
 	mu      sync.Mutex
 	scenes  []trace.Scene
+	strips  []trace.View
 	step    chan float64 // the share done to report; 1 ends the run
 	running int
 	most    int // runs at a time
@@ -58,6 +60,11 @@ type engine struct {
 
 func (e *engine) trace(ctx context.Context, scene trace.Scene, s trace.Settings, report func(*trace.Result)) (*trace.Result, error) {
 	e.mu.Lock()
+	if report == nil {
+		defer e.mu.Unlock()
+		e.strips = append(e.strips, s.View)
+		return resultOf(scene, 1), nil
+	}
 	e.scenes = append(e.scenes, scene)
 	e.running++
 	e.most = max(e.most, e.running)
@@ -72,16 +79,21 @@ func (e *engine) trace(ctx context.Context, scene trace.Scene, s trace.Settings,
 		case <-ctx.Done():
 			return nil, context.Cause(ctx)
 		case share := <-e.step:
-			result := &trace.Result{Done: share}
-			for _, m := range scene.Surroundings {
-				result.Columns = append(result.Columns, trace.Column{Surrounding: m, Map: &trace.Map{}})
-			}
+			result := resultOf(scene, share)
 			if share >= 1 {
 				return result, nil
 			}
 			report(result)
 		}
 	}
+}
+
+func resultOf(scene trace.Scene, share float64) *trace.Result {
+	result := &trace.Result{Done: share}
+	for _, m := range scene.Surroundings {
+		result.Columns = append(result.Columns, trace.Column{Surrounding: m, Map: &trace.Map{}})
+	}
+	return result
 }
 
 // stand is a Look on a stand-in window and engine.
@@ -316,11 +328,11 @@ func TestSettingsAndMediaReachTheRun(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		s.SetMedium(1, diamond)
+		s.SetAround(1, Around{Medium: diamond, Dish: true})
 		s.Adjust(func(s *trace.Settings) { s.View.Tilt = 5 * facets.Degree })
 		s.window.settle()
 		last := s.engine.scenes[len(s.engine.scenes)-1]
-		if last.Surroundings[1].Medium != diamond || last.Surroundings[0].Medium.Key != "air" {
+		if last.Surroundings[1].Medium != diamond || !last.Surroundings[1].Dish || last.Surroundings[0].Medium.Key != "air" {
 			t.Errorf("media of the run: %v", last.Surroundings)
 		}
 		runs := len(s.engine.scenes)
@@ -346,4 +358,36 @@ func TestPaceSpacesFrames(t *testing.T) {
 	if want := 1 + 20 + 32; got < want-2 || got > want {
 		t.Errorf("%d frames in ten seconds, want about %d", got, want)
 	}
+}
+
+// After the maps the strip is traced, from the middle out, and not again for
+// another tilt of the same stone.
+func TestStripFollowsTheMaps(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		s := newStand(t)
+		s.Show(stoneNamed("one"))
+		s.window.settle()
+		s.report(t, 1)
+		if s.Strip == nil || !s.Strip.Done || s.Strip.Tilts[0] != -StripRange || s.Strip.Tilts[stripStops-1] != StripRange {
+			t.Fatalf("the strip after the maps: %+v", s.Strip)
+		}
+		if len(s.engine.strips) != stripStops || s.engine.strips[0].Tilt != 0 {
+			t.Errorf("the strip was traced at %v, want the middle first and each stop once", s.engine.strips)
+		}
+		s.Adjust(func(set *trace.Settings) { set.View.Tilt = s.Strip.Tilts[2] })
+		s.window.settle()
+		s.report(t, 1)
+		if len(s.engine.strips) != stripStops {
+			t.Error("the strip was traced again for another tilt of the maps")
+		}
+		if stop, ok := s.StripStop(); !ok || stop != 2 {
+			t.Errorf("the maps stand at stop %d, %v", stop, ok)
+		}
+		s.Adjust(func(set *trace.Settings) { set.View.Turn = facets.Degree })
+		s.window.settle()
+		s.report(t, 1)
+		if len(s.engine.strips) != 2*stripStops {
+			t.Error("the strip was not traced again for another direction of rocking")
+		}
+	})
 }

@@ -152,9 +152,9 @@ func detail(t *facets.Tier, gear int) string {
 	return b.String()
 }
 
-// criticalTicks returns the critical angles of a material in the given media, at
+// criticalTicks returns the critical angles of a material in the surroundings, at
 // the sodium D line; a medium that is not the thinner side has none.
-func criticalTicks(material *gems.Material, media []*gems.Material) []Tick {
+func criticalTicks(material *gems.Material, around []Around) []Tick {
 	var ticks []Tick
 	if material == nil {
 		return nil
@@ -163,7 +163,8 @@ func criticalTicks(material *gems.Material, media []*gems.Material) []Tick {
 	if err != nil {
 		return nil
 	}
-	for _, m := range media {
+	for _, a := range around {
+		m := a.Medium
 		outside, err := m.Index(gems.LineD)
 		if err != nil {
 			continue

@@ -58,9 +58,12 @@ type Heading struct {
 
 // Heading returns what stands above a column.
 func (l *Look) Heading(column int) Heading {
-	m := l.Media[column]
-	h := Heading{Medium: shortName(m)}
-	if l.Frame == nil || column >= len(l.Frame.Result.Columns) || l.Frame.Media[column] != m {
+	a := l.Around[column]
+	h := Heading{Medium: shortName(a.Medium)}
+	if a.Dish {
+		h.Medium = "Dish of " + strings.ToLower(h.Medium)
+	}
+	if l.Frame == nil || column >= len(l.Frame.Result.Columns) || l.Frame.Around[column] != a {
 		return h
 	}
 	c := &l.Frame.Result.Columns[column]

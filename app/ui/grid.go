@@ -76,16 +76,23 @@ func (g *grid) add(objects ...fyne.CanvasObject) {
 
 // mediaItems lists the surroundings that a column can take.
 func (g *grid) mediaItems(column int) []*fyne.MenuItem {
+	now := g.bench.Look.Around[column]
 	var items []*fyne.MenuItem
 	for _, m := range gems.Surroundings() {
 		if m.Group != gems.Gas && m.Group != gems.Liquid {
 			continue
 		}
-		item := fyne.NewMenuItem(m.Name, func() { g.bench.SetMedium(column, m) })
-		item.Checked = m.Key == g.bench.Look.Media[column].Key
+		item := fyne.NewMenuItem(m.Name, func() {
+			g.bench.SetAround(column, model.Around{Medium: m, Dish: now.Dish && m.Group == gems.Liquid})
+		})
+		item.Checked = m.Key == now.Medium.Key
 		items = append(items, item)
 	}
-	return items
+	dish := fyne.NewMenuItem("In a dish, seen from air", func() {
+		g.bench.SetAround(column, model.Around{Medium: now.Medium, Dish: !now.Dish})
+	})
+	dish.Checked, dish.Disabled = now.Dish, now.Medium.Group != gems.Liquid
+	return append(items, fyne.NewMenuItemSeparator(), dish)
 }
 
 // quantityItems lists what a row can show.

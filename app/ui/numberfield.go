@@ -26,6 +26,7 @@ type numberField struct {
 
 	value   float64 // the last that was shown or committed
 	focused bool
+	entered bool // the focus came with the press under way
 }
 
 var (
@@ -145,10 +146,32 @@ func (f *numberField) Scrolled(e *fyne.ScrollEvent) {
 	}
 }
 
+// MouseDown notes whether it brings the focus.
+func (f *numberField) MouseDown(e *desktop.MouseEvent) {
+	f.entered = !f.focused
+	f.Entry.MouseDown(e)
+}
+
+// MouseUp marks all of the text if this click brought the focus and marked nothing
+// itself, so that typing replaces the number; a second click sets the cursor.
+func (f *numberField) MouseUp(e *desktop.MouseEvent) {
+	f.Entry.MouseUp(e)
+	if f.entered && f.SelectedText() == "" {
+		f.markAll()
+	}
+	f.entered = false
+}
+
+// DoubleTapped marks all of the text, not the word beside the decimal point.
+func (f *numberField) DoubleTapped(*fyne.PointEvent) { f.markAll() }
+
+func (f *numberField) markAll() { f.Entry.TypedShortcut(&fyne.ShortcutSelectAll{}) }
+
 // FocusGained marks all of the text, so that typing replaces it.
 func (f *numberField) FocusGained() {
 	f.focused = true
 	f.Entry.FocusGained()
+	f.markAll()
 	if f.gained != nil {
 		f.gained()
 	}

@@ -143,13 +143,16 @@ func (*squareLayout) Layout(objects []fyne.CanvasObject, size fyne.Size) {
 	place(objects[1], 6, size.Height-below-2, max(0, size.Width-12), below)
 }
 
-// factTable is a list of names and numbers.
+// factTable is a list of names and values; a long value takes several lines.
 type factTable struct {
 	box  *fyne.Container
 	rows []factRow
 }
 
-type factRow struct{ name, value *line }
+type factRow struct {
+	name  *line
+	value *wrapped
+}
 
 func newFactTable() *factTable {
 	t := &factTable{}
@@ -158,15 +161,12 @@ func newFactTable() *factTable {
 }
 
 func (t *factTable) show(facts [][2]string) {
-	changed := len(facts) != len(t.rows)
-	if changed {
-		t.box.RemoveAll()
-		t.rows = nil
+	if len(facts) != len(t.rows) {
+		t.box.Objects, t.rows = nil, nil
 		for range facts {
-			r := factRow{newLine(colourDim, theme.SizeNameText), newLine(theme.ColorNameForeground, theme.SizeNameText)}
+			r := factRow{newLine(colourDim, theme.SizeNameText), newWrapped(theme.ColorNameForeground, theme.SizeNameText)}
 			t.rows = append(t.rows, r)
-			t.box.Add(r.name)
-			t.box.Add(r.value)
+			t.box.Objects = append(t.box.Objects, r.name, r.value)
 		}
 	}
 	for i, f := range facts {
@@ -178,22 +178,36 @@ func (t *factTable) show(facts [][2]string) {
 		t.rows[i].name.setText(f[0])
 		t.rows[i].value.setText(f[1])
 	}
-	if changed {
-		t.box.Refresh()
-	}
+	t.box.Refresh()
 }
 
-// MinSize is a line a fact.
-func (t *factTable) MinSize([]fyne.CanvasObject) fyne.Size {
-	return fyne.NewSize(120, float32(len(t.rows))*(lineHeight()+1))
-}
+// factNames is the width of the names.
+const factNames = 100
 
-// Layout sets the numbers in one column.
-func (t *factTable) Layout(_ []fyne.CanvasObject, size fyne.Size) {
-	high := lineHeight() + 1
-	const names = 100
+// each walks the rows with the place of each, and returns the height of all.
+func (t *factTable) each(width float32, do func(r factRow, y, high float32)) float32 {
+	y := float32(0)
 	for i, r := range t.rows {
-		place(r.name, 0, float32(i)*high, names-6, high)
-		place(r.value, names, float32(i)*high, max(0, size.Width-names), high)
+		if r.value.text == "" && i > 0 {
+			y += 8 // before a heading
+		}
+		high := max(lineHeight(), r.value.high(width-factNames)) + 1
+		do(r, y, high)
+		y += high
 	}
+	return y
+}
+
+// MinSize is the height that the values need at the width of the pane.
+func (t *factTable) MinSize([]fyne.CanvasObject) fyne.Size {
+	width := max(stoneNarrow-28, t.box.Size().Width)
+	return fyne.NewSize(120, t.each(width, func(factRow, float32, float32) {}))
+}
+
+// Layout sets the values in one column.
+func (t *factTable) Layout(_ []fyne.CanvasObject, size fyne.Size) {
+	t.each(size.Width, func(r factRow, y, high float32) {
+		place(r.name, 0, y, factNames-6, lineHeight())
+		place(r.value, factNames, y, max(0, size.Width-factNames), high)
+	})
 }

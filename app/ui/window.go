@@ -178,14 +178,16 @@ func (w *window) planPane() fyne.CanvasObject {
 
 func (w *window) troubleBox() *fyne.Container {
 	heading := newLine(theme.ColorNameError, theme.SizeNameText).bold()
-	heading.setText("⚠ This plan makes no stone")
+	heading.setText("This plan makes no stone")
+	warning := widget.NewIcon(theme.NewErrorThemedResource(theme.WarningIcon()))
 	keeps := newLine(colourDim, theme.SizeNameCaptionText)
 	keeps.setText("The maps show the last stone that it made.")
 	scroll := container.NewVScroll(w.troubles)
 	scroll.SetMinSize(fyne.NewSize(100, 110))
 	return container.NewStack(ground(theme.ColorNameInputBackground),
 		container.New(layout.NewCustomPaddedLayout(8, 8, 8, 8), container.NewBorder(
-			container.New(layout.NewCustomPaddedVBoxLayout(2), heading, keeps), nil, nil, nil, scroll)))
+			container.New(layout.NewCustomPaddedVBoxLayout(2),
+				container.NewBorder(nil, nil, warning, nil, heading), keeps), nil, nil, nil, scroll)))
 }
 
 // lookPane is the middle one: how the stone is looked at, and the grid of maps.
@@ -250,7 +252,7 @@ func (w *window) say(err error) {
 		return
 	}
 	w.message.setColour(theme.ColorNameError)
-	w.message.setText("⚠ " + err.Error())
+	w.message.setText("Not taken: " + err.Error())
 }
 
 // report says what was done.

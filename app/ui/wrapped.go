@@ -32,6 +32,15 @@ func (w *wrapped) setText(text string) {
 	}
 }
 
+// high returns how tall the text is when it is broken at a width.
+func (w *wrapped) high(width float32) float32 {
+	size := theme.Size(w.size)
+	lines := breakLines(w.text, func(s string) bool {
+		return fyne.MeasureText(s, size, fyne.TextStyle{}).Width <= width
+	})
+	return float32(max(1, min(mostLines, len(lines)))) * fyne.MeasureText("M", size, fyne.TextStyle{}).Height
+}
+
 // CreateRenderer builds a stock of lines.
 func (w *wrapped) CreateRenderer() fyne.WidgetRenderer {
 	r := &wrappedRenderer{w: w}

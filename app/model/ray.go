@@ -1,0 +1,213 @@
+package model
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"github.com/go-gl/mathgl/mgl64"
+
+	"pavilight/facets"
+	"pavilight/trace"
+)
+
+// Ray is one viewing ray that is being followed: where it was asked for, and its
+// path through the stone that the maps show.
+type Ray struct {
+	Column int
+	X, Y   float64 // shares of the picture from its top left corner
+	Around Around
+	Stone  *facets.Stone
+	Path   *trace.Path // nil where there is none
+	Why    string      // there is no path
+	Step   int         // the bounce picked in the list; -1 for none
+}
+
+// Follow follows the ray through a place of the maps in one column's surrounding.
+func (l *Look) Follow(column int, x, y float64) {
+	if l.Frame == nil || column >= len(l.Frame.Around) {
+		return
+	}
+	l.Ray = &Ray{Column: column, X: min(1, max(0, x)), Y: min(1, max(0, y)), Step: -1}
+	l.followAgain()
+}
+
+// Unfollow lets the ray go.
+func (l *Look) Unfollow() {
+	if l.Ray != nil {
+		l.Ray = nil
+		l.onChange(RayChanged)
+	}
+}
+
+// PickBounce picks a bounce of the ray, within those that there are; -1 picks none.
+func (l *Look) PickBounce(step int) {
+	if l.Ray == nil || l.Ray.Path == nil {
+		return
+	}
+	r := *l.Ray
+	r.Step = min(len(r.Path.Bounces)-1, max(-1, step))
+	if r.Step != l.Ray.Step {
+		l.Ray = &r
+		l.onChange(RayChanged)
+	}
+}
+
+// followAgain follows the ray through the stone that the maps show now.
+func (l *Look) followAgain() {
+	if l.Ray == nil || l.Frame == nil {
+		return
+	}
+	f, r := l.Frame, *l.Ray
+	r.Around, r.Stone, r.Path, r.Why = f.Around[r.Column], f.Subject.Stone, nil, ""
+	scene := trace.Scene{Stone: f.Subject.Stone, Material: f.Subject.Material, Surroundings: surroundings(f.Around)}
+	switch path, ok, err := trace.Follow(scene, r.Column, f.Settings, r.X, r.Y); {
+	case err != nil:
+		r.Why = err.Error()
+	case !ok:
+		r.Why = "it passes beside the stone"
+	default:
+		r.Path = path
+		r.Step = min(r.Step, len(path.Bounces)-1)
+	}
+	l.Ray = &r
+	l.onChange(RayChanged)
+}
+
+// Title says what is followed, in which surrounding, against which critical angle.
+func (r *Ray) Title() string {
+	title := "Ray in " + strings.ToLower(shortName(r.Around.Medium))
+	switch {
+	case r.Path == nil:
+		return title + ": " + r.Why
+	case r.Path.HasCritical:
+		return fmt.Sprintf("%s, critical angle %.2f°", title, r.Path.Critical.Degrees())
+	}
+	return title + ", no critical angle"
+}
+
+// RayLine is one line of the list of a ray: its entry, or a bounce.
+type RayLine struct {
+	Number string // of the bounce; empty for the entry
+	Facet  string
+	Angle  string // of incidence
+	Stayed string // share that goes on inside
+	Left   string // share that leaves here; empty under total reflection
+	Goes   string // where that share goes, in a word
+	Entry  trace.Quantity
+}
+
+// mostRayLines is how many bounces the list tells; later ones carry next to nothing.
+const mostRayLines = 24
+
+// Lines tells the ray bounce by bounce, and how many bounces more there are.
+func (r *Ray) Lines() (lines []RayLine, more int) {
+	if r.Path == nil {
+		return nil, 0
+	}
+	p := r.Path
+	lines = append(lines, RayLine{
+		Facet:  facetName(r.Stone, p.Facet),
+		Angle:  fmt.Sprintf("%.1f°", p.Incidence.Degrees()),
+		Stayed: fmt.Sprintf("%.3f", 1-p.Surface),
+		Left:   fmt.Sprintf("%.3f", p.Surface),
+		Goes:   "mirrored",
+		Entry:  trace.Surface,
+	})
+	for i, b := range p.Bounces[:min(len(p.Bounces), mostRayLines)] {
+		line := RayLine{
+			Number: fmt.Sprint(i + 1),
+			Facet:  facetName(r.Stone, b.Facet),
+			Angle:  fmt.Sprintf("%.1f°", b.Incidence.Degrees()),
+			Stayed: fmt.Sprintf("%.3f", b.Stayed),
+			Goes:   "total",
+		}
+		if !b.Total {
+			line.Left = fmt.Sprintf("%.3f", b.Left)
+			line.Goes = map[trace.Quantity]string{trace.Returned: "up", trace.Head: "up, head", trace.Leaked: "down"}[b.Goes]
+			line.Entry = b.Goes
+		}
+		lines = append(lines, line)
+	}
+	return lines, max(0, len(p.Bounces)-mostRayLines)
+}
+
+// facetName names a facet by its tier and tooth: P1@12, or its number in a scan.
+func facetName(stone *facets.Stone, facet int) string {
+	f := &stone.Facets[facet]
+	switch {
+	case f.Tier == "":
+		return fmt.Sprintf("facet %d", facet+1)
+	case math.IsNaN(f.Index):
+		return f.Tier
+	}
+	return fmt.Sprintf("%s@%g", f.Tier, math.Round(f.Index*100)/100)
+}
+
+// Text tells the whole ray as a table for the clipboard or a file, columns apart by tabs.
+func (r *Ray) Text() string {
+	var b strings.Builder
+	fmt.Fprintln(&b, r.Title())
+	if r.Path == nil {
+		return b.String()
+	}
+	p := r.Path
+	fmt.Fprintf(&b, "wavelength %v, index %.4f in %.4f\n", p.Wavelength, p.IndexStone, p.IndexMedium)
+	fmt.Fprintln(&b, "bounce\tfacet\tincidence in degrees\tstayed\tleft\tgoes\tdegrees from the eye")
+	fmt.Fprintf(&b, "entry\t%s\t%.3f\t%.6f\t%.6f\tmirrored\t\n", facetName(r.Stone, p.Facet), p.Incidence.Degrees(), 1-p.Surface, p.Surface)
+	for i, s := range p.Bounces {
+		goes, from := "total reflection", ""
+		if !s.Total {
+			goes, from = s.Goes.String(), fmt.Sprintf("%.3f", s.FromEye.Degrees())
+		}
+		fmt.Fprintf(&b, "%d\t%s\t%.3f\t%.6f\t%.6f\t%s\t%s\n",
+			i+1, facetName(r.Stone, s.Facet), s.Incidence.Degrees(), s.Stayed, s.Left, goes, from)
+	}
+	return b.String()
+}
+
+// Stretch is a straight piece of a drawn ray, in the stone's frame in mm.
+type Stretch struct {
+	From, To mgl64.Vec3
+	Share    float64        // of the viewing ray that it carries
+	Inside   bool           // within the stone
+	Goes     trace.Quantity // outside: the entry of the ledger that it counts in
+	Bounce   int            // the bounce that it leads to or leaves from; -1 for the way in
+}
+
+// Stretches returns the ray as it is drawn: the way in, the pieces inside, and what
+// leaves at each facet that is worth a line. reach is how far outside pieces go, mm.
+func (r *Ray) Stretches(reach float64) []Stretch {
+	if r.Path == nil {
+		return nil
+	}
+	p := r.Path
+	const faint = 0.01 // a share too small to be drawn
+	eye := r.eye()
+	drawn := []Stretch{
+		{From: p.Entry.Add(eye.Mul(reach)), To: p.Entry, Share: 1, Bounce: -1, Goes: trace.Unresolved},
+	}
+	if p.Surface > faint {
+		drawn = append(drawn, Stretch{From: p.Entry, To: p.Entry.Add(p.Mirrored.Mul(reach / 2)), Share: p.Surface, Goes: trace.Surface, Bounce: -1})
+	}
+	from := p.Entry
+	for i, b := range p.Bounces {
+		if b.Arrived < faint {
+			break
+		}
+		drawn = append(drawn, Stretch{From: from, To: b.At, Share: b.Arrived, Inside: true, Bounce: i})
+		if !b.Total && b.Left > faint {
+			drawn = append(drawn, Stretch{From: b.At, To: b.At.Add(b.Leaving.Mul(reach)), Share: b.Left, Goes: b.Goes, Bounce: i})
+		}
+		from = b.At
+	}
+	return drawn
+}
+
+// eye returns the direction to the eye, which the mirrored light and the facet's
+// normal give: the normal halves the angle between the two.
+func (r *Ray) eye() mgl64.Vec3 {
+	n := r.Stone.Facets[r.Path.Facet].Normal
+	m := r.Path.Mirrored
+	return n.Mul(2 * n.Dot(m)).Sub(m)
+}
