@@ -563,8 +563,12 @@ func (s *Stone) findEdges() {
 	}
 }
 
-// sound checks that the stone is closed: every edge has two facets and Euler's
-// formula holds.
+// thinnest is the least ratio of volume to surface, in the stone's reach, at
+// which its planes can be told apart: four orders above weldTolerance.
+const thinnest = 1e-6
+
+// sound checks that the stone is closed and no mere sheet: every edge has two
+// facets and Euler's formula holds.
 func (s *Stone) sound() error {
 	for _, e := range s.Edges {
 		if e.Facets[1] < 0 {
@@ -574,6 +578,13 @@ func (s *Stone) sound() error {
 	if len(s.Corners)-len(s.Edges)+len(s.Facets) != 2 {
 		return fmt.Errorf("%w: %d corners, %d edges and %d facets do not close",
 			ErrTangled, len(s.Corners), len(s.Edges), len(s.Facets))
+	}
+	surface := 0.0
+	for i := range s.Facets {
+		surface += s.Facets[i].Area
+	}
+	if _, reach := s.reach(); !(s.Volume() > thinnest*reach*surface) {
+		return fmt.Errorf("%w: the solid is thinner than %g of its size", ErrTangled, thinnest)
 	}
 	return nil
 }
