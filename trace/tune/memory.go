@@ -1,0 +1,121 @@
+package tune
+
+import (
+	"bufio"
+	"bytes"
+	"crypto/sha256"
+	"encoding/hex"
+	"encoding/json"
+	"errors"
+	"fmt"
+	"io"
+	"os"
+)
+
+// Memory is a file of trials, so that a run that was stopped or killed goes on where
+// it was: it asks the same questions again and finds them answered. The file holds one
+// JSON value a line; a last line that was cut short is dropped. A nil Memory keeps
+// nothing.
+type Memory struct {
+	Path    string
+	Purpose string // what the trials depend on beside their values: plan text, goal, limits
+	file    *os.File
+}
+
+// mostMemory bounds the file that is read back.
+const mostMemory = 256 << 20
+
+type memoryHead struct {
+	Pavilight string `json:"pavilight"`
+	Purpose   string `json:"purpose"`
+}
+
+type memoryLine struct {
+	Key   string `json:"key"`
+	Trial Trial  `json:"trial"`
+}
+
+// open reads what the file holds into the judge and has it write on.
+func (m *Memory) open(j *judge) error {
+	if m == nil {
+		return nil
+	}
+	sum := sha256.Sum256([]byte(m.Purpose))
+	head := memoryHead{"tuning trials 1", hex.EncodeToString(sum[:])}
+	f, err := os.OpenFile(m.Path, os.O_RDWR|os.O_CREATE, 0o644)
+	if err != nil {
+		return err
+	}
+	good, err := readMemory(io.LimitReader(f, mostMemory), head, j.known)
+	if err == nil && good == 0 {
+		good, err = writeHead(f, head)
+	}
+	if err == nil {
+		if err = f.Truncate(good); err == nil {
+			_, err = f.Seek(good, io.SeekStart)
+		}
+	}
+	if err != nil {
+		f.Close()
+		return fmt.Errorf("%s: %w", m.Path, err)
+	}
+	m.file = f
+	j.keep = func(key string, t Trial) error {
+		line, err := json.Marshal(memoryLine{key, t})
+		if err != nil {
+			return err
+		}
+		_, err = f.Write(append(line, '\n'))
+		return err
+	}
+	return nil
+}
+
+// Close ends the memory's use of its file.
+func (m *Memory) Close() error {
+	if m == nil || m.file == nil {
+		return nil
+	}
+	return m.file.Close()
+}
+
+func writeHead(f *os.File, head memoryHead) (int64, error) {
+	line, err := json.Marshal(head)
+	if err != nil {
+		return 0, err
+	}
+	n, err := f.WriteAt(append(line, '\n'), 0)
+	return int64(n), err
+}
+
+// readMemory reads whole lines into known and returns where the last one ends; 0 for
+// an empty file.
+func readMemory(r io.Reader, want memoryHead, known map[string]Trial) (good int64, err error) {
+	in := bufio.NewReader(r)
+	for n := 0; ; n++ {
+		line, err := in.ReadBytes('\n')
+		if errors.Is(err, io.EOF) {
+			return good, nil // a line without an end was cut short
+		}
+		if err != nil {
+			return 0, err
+		}
+		if n == 0 {
+			var head memoryHead
+			if json.Unmarshal(line, &head) != nil || head.Pavilight != want.Pavilight {
+				return 0, errors.New("this is no file of tuning trials; name another one")
+			}
+			if head.Purpose != want.Purpose {
+				return 0, errors.New("these trials belong to another plan, goal or set of limits; name another file")
+			}
+		} else {
+			var l memoryLine
+			d := json.NewDecoder(bytes.NewReader(line))
+			if d.Decode(&l) != nil {
+				return good, nil // garbage from here on, as after a crash: it is asked again
+			}
+			known[l.Key] = l.Trial
+		}
+		good += int64(len(line))
+	}
+}
