@@ -111,7 +111,7 @@ func (r *Ray) Lines() (lines []RayLine, more int) {
 		Angle:  fmt.Sprintf("%.1f°", p.Incidence.Degrees()),
 		Stayed: fmt.Sprintf("%.3f", 1-p.Surface),
 		Left:   fmt.Sprintf("%.3f", p.Surface),
-		Goes:   "mirrored",
+		Goes:   "mirror",
 		Entry:  trace.Surface,
 	})
 	for i, b := range p.Bounces[:min(len(p.Bounces), mostRayLines)] {
@@ -124,7 +124,7 @@ func (r *Ray) Lines() (lines []RayLine, more int) {
 		}
 		if !b.Total {
 			line.Left = fmt.Sprintf("%.3f", b.Left)
-			line.Goes = map[trace.Quantity]string{trace.Returned: "up", trace.Head: "up, head", trace.Leaked: "down"}[b.Goes]
+			line.Goes = map[trace.Quantity]string{trace.Returned: "up", trace.Head: "head", trace.Leaked: "down"}[b.Goes]
 			line.Entry = b.Goes
 		}
 		lines = append(lines, line)

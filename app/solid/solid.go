@@ -71,11 +71,20 @@ type Colours struct {
 	Selected color.RGBA // facets of the selected tier
 }
 
+// Ray is a straight piece of light drawn over the stone, in the stone's frame.
+type Ray struct {
+	From, To mgl64.Vec3 // mm
+	Colour   color.RGBA
+	Width    float64 // pixels
+}
+
 // Style is how a drawing looks.
 type Style struct {
 	Colours  Colours
 	Width    float64 // of an edge in pixels; 0 means 1.4
 	Selected string  // tier whose facets are picked out; empty for none
+	Glass    float64 // how much of the ground shows through the facets, 0 to 1
+	Rays     []Ray   // drawn on top, in this order
 }
 
 // Drawing is a stone projected onto a picture: it paints it and answers what
@@ -83,32 +92,47 @@ type Style struct {
 type Drawing struct {
 	stone  *facets.Stone
 	pose   Pose
+	centre mgl64.Vec3   // of the stone, mm
+	scale  float64      // pixels a mm
+	middle mgl64.Vec2   // of the picture, pixels
 	points []mgl64.Vec3 // corners in pixels, +Y down, depth in Z
 	front  []bool       // by facet: it faces the viewer
 }
 
-// margin is the share of the picture left free around the stone.
-const margin = 0.06
-
-// Project fits the stone into a picture of width x height pixels. The scale is
-// the same in every pose, so a stone that turns does not breathe.
-func Project(stone *facets.Stone, pose Pose, width, height int) *Drawing {
+// Project fits the stone into a picture of width x height pixels, so that the sphere
+// that holds it takes the given share of the shorter edge. The scale is the same in
+// every pose, so a stone that turns does not breathe.
+func Project(stone *facets.Stone, pose Pose, width, height int, share float64) *Drawing {
 	centre, radius := bounds(stone.Corners)
-	scale := (1 - 2*margin) * float64(min(width, height)) / 2 / radius
 	d := &Drawing{
 		stone:  stone,
 		pose:   pose,
+		centre: centre,
+		scale:  share * float64(min(width, height)) / 2 / radius,
+		middle: mgl64.Vec2{float64(width) / 2, float64(height) / 2},
 		points: make([]mgl64.Vec3, len(stone.Corners)),
 		front:  make([]bool, len(stone.Facets)),
 	}
 	for i, c := range stone.Corners {
-		v := pose.View(c.Sub(centre))
-		d.points[i] = mgl64.Vec3{float64(width)/2 + scale*v[0], float64(height)/2 - scale*v[1], v[2]}
+		d.points[i] = d.Point(c)
 	}
 	for i := range stone.Facets {
 		d.front[i] = pose.View(stone.Facets[i].Normal)[2] > 0
 	}
 	return d
+}
+
+// Point returns where a point of the stone's frame, in mm, falls in the picture: X
+// and Y in pixels from the top left corner, Z toward the eye in mm.
+func (d *Drawing) Point(v mgl64.Vec3) mgl64.Vec3 {
+	p := d.pose.View(v.Sub(d.centre))
+	return mgl64.Vec3{d.middle[0] + d.scale*p[0], d.middle[1] - d.scale*p[1], p[2]}
+}
+
+// Radius returns the radius of the sphere that holds a stone, in mm.
+func Radius(stone *facets.Stone) float64 {
+	_, radius := bounds(stone.Corners)
+	return radius
 }
 
 // bounds returns the middle of the corners' box and the distance of the corner
@@ -176,7 +200,7 @@ func (d *Drawing) Labels(least float64) []Label {
 		if !d.front[i] || f.Tier == "" {
 			continue
 		}
-		area, x, y := d.middle(i)
+		area, x, y := d.centroid(i)
 		if area < least {
 			continue
 		}
@@ -199,8 +223,8 @@ func (d *Drawing) Labels(least float64) []Label {
 // only a little more, so that labels do not flicker from rounding in a face-up view.
 const nearlyAlike = 1.02
 
-// middle returns the area of the projected facet in square pixels and its centroid.
-func (d *Drawing) middle(facet int) (area, x, y float64) {
+// centroid returns the area of the projected facet in square pixels and its centroid.
+func (d *Drawing) centroid(facet int) (area, x, y float64) {
 	ring := d.stone.Facets[facet].Corners
 	origin := d.points[ring[0]]
 	for k := 1; k+1 < len(ring); k++ {
@@ -214,15 +238,6 @@ func (d *Drawing) middle(facet int) (area, x, y float64) {
 		return 0, origin[0], origin[1]
 	}
 	return math.Abs(area), origin[0] + x/area, origin[1] + y/area
-}
-
-// Point returns where a point of the stone's frame, in mm, falls in the picture
-// of the drawing's size.
-func (d *Drawing) Point(v mgl64.Vec3, width, height int) (x, y float64) {
-	centre, radius := bounds(d.stone.Corners)
-	scale := (1 - 2*margin) * float64(min(width, height)) / 2 / radius
-	p := d.pose.View(v.Sub(centre))
-	return float64(width)/2 + scale*p[0], float64(height)/2 - scale*p[1]
 }
 
 // Paint draws the stone over the whole of dst.
@@ -247,6 +262,10 @@ func (d *Drawing) Paint(dst *image.RGBA, style Style) {
 			stroke(dst, a[0], a[1], b[0], b[1], width*0.7, style.Colours.Hidden)
 		}
 	}
+	for _, r := range style.Rays {
+		a, b := d.Point(r.From), d.Point(r.To)
+		stroke(dst, a[0], a[1], b[0], b[1], r.Width, r.Colour)
+	}
 }
 
 // paintFacet fills one facet. The lamp stands above the viewer's left shoulder.
@@ -258,6 +277,7 @@ func (d *Drawing) paintFacet(dst *image.RGBA, facet int, style Style) {
 	if style.Selected != "" && f.Tier == style.Selected {
 		c = blend(style.Colours.Selected, c, 0.25)
 	}
+	c = blend(c, style.Colours.Ground, style.Glass)
 	ring := make([][2]float64, len(f.Corners))
 	for k, corner := range f.Corners {
 		ring[k] = [2]float64{d.points[corner][0], d.points[corner][1]}

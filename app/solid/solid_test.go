@@ -47,6 +47,9 @@ func box() *facets.Stone {
 	return s
 }
 
+// share is that of a picture's edge which the stone takes in these tests.
+const share = 0.88
+
 func TestPoses(t *testing.T) {
 	x, y, z := mgl64.Vec3{1, 0, 0}, mgl64.Vec3{0, 1, 0}, mgl64.Vec3{0, 0, 1}
 	for _, c := range []struct {
@@ -77,7 +80,7 @@ func TestPoses(t *testing.T) {
 }
 
 func TestFacetUnderPoint(t *testing.T) {
-	d := Project(box(), FaceUp(), 200, 200)
+	d := Project(box(), FaceUp(), 200, 200, share)
 	// The box is 4 mm along x, which is up the picture, and 2 mm across.
 	for _, c := range []struct {
 		name string
@@ -95,7 +98,7 @@ func TestFacetUnderPoint(t *testing.T) {
 			t.Errorf("%s: facet %q, want %q", c.name, tier, c.tier)
 		}
 	}
-	if i, ok := Project(box(), Profile(), 200, 200).Facet(100, 100); !ok || box().Facets[i].Tier != "+x" {
+	if i, ok := Project(box(), Profile(), 200, 200, share).Facet(100, 100); !ok || box().Facets[i].Tier != "+x" {
 		t.Errorf("profile shows facet %d, %v; want the one toward index 0", i, ok)
 	}
 }
@@ -111,7 +114,7 @@ func TestPaintCoversOutline(t *testing.T) {
 		const size = 400
 		stone := box()
 		dst := image.NewRGBA(image.Rect(0, 0, size, size))
-		d := Project(stone, pose, size, size)
+		d := Project(stone, pose, size, size, share)
 		d.Paint(dst, style)
 		covered := 0
 		for i := 0; i < len(dst.Pix); i += 4 {
@@ -126,7 +129,7 @@ func TestPaintCoversOutline(t *testing.T) {
 		faces := map[string]float64{"+z": 8, "-z": 8, "+x": 2, "-x": 2, "+y": 4, "-y": 4} // mm²
 		want, rim := 0.0, 0.0
 		_, radius := bounds(stone.Corners)
-		scale := (1 - 2*margin) * size / 2 / radius
+		scale := share * size / 2 / radius
 		for i, f := range stone.Facets {
 			if d.front[i] {
 				want += faces[f.Tier] * pose.View(f.Normal)[2] * scale * scale
@@ -140,7 +143,7 @@ func TestPaintCoversOutline(t *testing.T) {
 }
 
 func TestLabelsNameEachTierSeenOnce(t *testing.T) {
-	labels := Project(box(), FaceUp().Turned(0.4, 0.4), 200, 200).Labels(4)
+	labels := Project(box(), FaceUp().Turned(0.4, 0.4), 200, 200, share).Labels(4)
 	if len(labels) != 3 {
 		t.Fatalf("%d labels %v, want the three faces seen", len(labels), labels)
 	}
@@ -153,14 +156,32 @@ func TestLabelsNameEachTierSeenOnce(t *testing.T) {
 	}
 }
 
+// A ray's ends are drawn where the drawing says that its points fall.
+func TestRaysAreDrawnOnTop(t *testing.T) {
+	red := color.RGBA{255, 0, 0, 255}
+	from, to := mgl64.Vec3{0, 0, 0}, mgl64.Vec3{1.5, 0, 0}
+	dst := image.NewRGBA(image.Rect(0, 0, 200, 200))
+	d := Project(box(), FaceUp(), 200, 200, share)
+	d.Paint(dst, Style{Rays: []Ray{{From: from, To: to, Colour: red, Width: 3}}})
+	for _, v := range []mgl64.Vec3{from, from.Add(to).Mul(0.5), to} {
+		p := d.Point(v)
+		if got := dst.RGBAAt(int(p[0]), int(p[1])); got != red {
+			t.Errorf("at %v the picture is %v, want the ray's red", v, got)
+		}
+	}
+	if p := d.Point(to); !(p[1] < d.Point(from)[1]) {
+		t.Error("index 0 does not point up the picture")
+	}
+}
+
 func TestDegenerateStoneDoesNotPanic(t *testing.T) {
 	dst := image.NewRGBA(image.Rect(0, 0, 3, 2))
-	Project(&facets.Stone{}, FaceUp(), 3, 2).Paint(dst, Style{})
-	Project(box(), FaceUp(), 1, 1).Paint(image.NewRGBA(image.Rect(0, 0, 1, 1)), Style{})
+	Project(&facets.Stone{}, FaceUp(), 3, 2, share).Paint(dst, Style{})
+	Project(box(), FaceUp(), 1, 1, share).Paint(image.NewRGBA(image.Rect(0, 0, 1, 1)), Style{})
 }
 
 func BenchmarkPaint(b *testing.B) {
-	d := Project(box(), FaceUp().Turned(0.4, 0.4), 600, 600)
+	d := Project(box(), FaceUp().Turned(0.4, 0.4), 600, 600, share)
 	dst := image.NewRGBA(image.Rect(0, 0, 600, 600))
 	style := Style{Colours: Colours{Edge: color.RGBA{255, 255, 255, 255}, Hidden: color.RGBA{99, 99, 99, 255}}}
 	b.ReportAllocs()

@@ -4,12 +4,14 @@ import (
 	"image"
 	"image/color"
 	"strconv"
+	"strings"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/container"
 	"fyne.io/fyne/v2/theme"
 
 	"pavilight/app/model"
+	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/trace"
 )
@@ -32,10 +34,13 @@ type grid struct {
 	scales   [model.Rows]*scaleBar
 	bars     [columns]*shareBar
 	ledger   ledger
-	strip    fyne.CanvasObject // below the ledger; may be nil
+	strip    *tiltStrip // below the ledger, where there is room
+	rocking  *line      // its name
+	rocked   *wrapped   // what it shows
 
 	pixels   int // of a map's edge on the screen, as last asked for
 	onPixels func(int)
+	onTilt   func(facets.Angle)
 }
 
 func newGrid(bench *model.Bench) *grid {
@@ -53,7 +58,8 @@ func newGrid(bench *model.Bench) *grid {
 		g.scales[i] = newScaleBar()
 		g.add(g.row[i], g.meaning[i])
 		for j := range columns {
-			g.maps[i][j] = newMapView(bench.Look.Point, bench.Look.PointAway)
+			g.maps[i][j] = newMapView(bench.Look.Point, bench.Look.PointAway,
+				func(x, y float64) { bench.Look.Follow(j, x, y) })
 			g.add(g.maps[i][j])
 		}
 		g.add(g.scales[i])
@@ -63,6 +69,11 @@ func newGrid(bench *model.Bench) *grid {
 		g.add(g.bars[j])
 	}
 	g.ledger.addTo(g.box)
+	g.strip = newTiltStrip(bench.Look, func(stop int) { g.onTilt(bench.Look.Strip.Tilts[stop]) })
+	g.rocking = newLine(theme.ColorNameForeground, theme.SizeNameText).bold()
+	g.rocking.setText("Rocked")
+	g.rocked = newWrapped(colourDim, theme.SizeNameCaptionText)
+	g.add(g.strip, g.rocking, g.rocked)
 	g.box.Layout = g
 	g.refreshAll()
 	return g
@@ -99,11 +110,17 @@ func (g *grid) mediaItems(column int) []*fyne.MenuItem {
 func (g *grid) quantityItems(row int) []*fyne.MenuItem {
 	var items []*fyne.MenuItem
 	for _, q := range model.Quantities() {
-		item := fyne.NewMenuItem(model.QuantityName(q), func() { g.bench.Look.SetRow(row, q); g.refreshHeadings() })
+		item := fyne.NewMenuItem(model.QuantityName(q), func() { g.setRow(row, q) })
 		item.Checked = q == g.bench.Look.Row[row]
 		items = append(items, item)
 	}
 	return items
+}
+
+func (g *grid) setRow(row int, q trace.Quantity) {
+	g.bench.Look.SetRow(row, q)
+	g.refreshHeadings()
+	g.strip.show()
 }
 
 func (g *grid) refreshAll() {
@@ -125,6 +142,7 @@ func (g *grid) refreshHeadings() {
 		g.meaning[i].setText(model.QuantityMeaning(q))
 		g.scales[i].show(g.bench.Look.ColourMap(i))
 	}
+	g.rocked.setText("mean " + strings.ToLower(model.QuantityName(g.bench.Look.Row[0])) + ", 0 below, 1 above; a click tilts the maps")
 	g.box.Refresh()
 }
 
@@ -145,6 +163,20 @@ func (g *grid) refreshMaps() {
 		}
 	}
 	g.refreshPointer()
+}
+
+// refreshRay marks where the followed ray enters, in the maps of its column.
+func (g *grid) refreshRay() {
+	r := g.bench.Look.Ray
+	for i := range model.Rows {
+		for j := range columns {
+			if pinned := r != nil && r.Column == j; pinned {
+				g.maps[i][j].showPin(true, r.X, r.Y)
+			} else {
+				g.maps[i][j].showPin(false, 0, 0)
+			}
+		}
+	}
 }
 
 // refreshPointer moves the cross-hair in all maps and tells the numbers under it.
@@ -205,6 +237,8 @@ const (
 	between   = 10  // columns
 	beneath   = 8   // a row of maps
 	mostEdge  = 420 // of a map
+
+	leastWithStrip = 168 // edge of a map, below which the strip gives way
 )
 
 // MinSize is what the grid can be squeezed to.
@@ -220,13 +254,16 @@ func (g *grid) barHeight() float32 { return 16 }
 // Layout gives the maps the largest squares that width and height allow.
 func (g *grid) Layout(_ []fyne.CanvasObject, size fyne.Size) {
 	head, foot := g.headHeight(), g.ledger.height()+g.barHeight()
-	var stripHeight float32
-	if g.strip != nil && g.strip.Visible() {
-		stripHeight = g.strip.MinSize().Height
-	}
 	wide := (size.Width-gutter-scaleWide)/columns - between
-	high := (size.Height-head-foot-stripHeight)/model.Rows - beneath
-	edge := max(60, min(wide, high, mostEdge))
+	high := func(taken float32) float32 { return (size.Height-head-foot-taken)/model.Rows - beneath }
+	strip := g.strip.MinSize().Height + beneath
+	if high(strip) < leastWithStrip { // the strip is not worth smaller maps than that
+		strip = 0
+	}
+	setVisible(g.strip, strip > 0)
+	setVisible(g.rocking, strip > 0)
+	setVisible(g.rocked, strip > 0)
+	edge := max(60, min(wide, high(strip), mostEdge))
 
 	// What the maps leave free goes left and right of them, and between the columns.
 	pitch := edge + between
@@ -258,8 +295,11 @@ func (g *grid) Layout(_ []fyne.CanvasObject, size fyne.Size) {
 		place(g.bars[j], x(j), y+2, edge, g.barHeight()-6)
 	}
 	g.ledger.layout(left, y+g.barHeight(), gutter, func(j int) float32 { return x(j) }, edge)
-	if stripHeight > 0 {
-		place(g.strip, left, size.Height-stripHeight, size.Width-left, stripHeight)
+	if strip > 0 {
+		top := y + foot + beneath
+		place(g.rocking, left, top-3, gutter, lineHeight())
+		place(g.rocked, left, top+lineHeight()-1, gutter-10, strip-beneath-lineHeight())
+		place(g.strip, x(0), top, float32(columns)*pitch-between+curveNames, strip-beneath)
 	}
 	g.tellPixels(edge)
 }

@@ -18,10 +18,13 @@ type mapView struct {
 	picture *canvas.Image
 	point   func(x, y float64) // shares of the picture from its top left
 	away    func()
+	follow  func(x, y float64) // the ray through a place
 
 	cross   fyne.Position // shares; shown if crossed
 	crossed bool
 	value   string // shown in the corner while crossed; empty beside the stone
+	pin     fyne.Position
+	pinned  bool // a ray through pin is followed
 	focused bool
 }
 
@@ -32,8 +35,8 @@ var (
 	_ fyne.Focusable     = (*mapView)(nil)
 )
 
-func newMapView(point func(x, y float64), away func()) *mapView {
-	m := &mapView{picture: &canvas.Image{}, point: point, away: away}
+func newMapView(point func(x, y float64), away func(), follow func(x, y float64)) *mapView {
+	m := &mapView{picture: &canvas.Image{}, point: point, away: away, follow: follow}
 	m.picture.ScaleMode = canvas.ImageScaleFastest
 	m.picture.FillMode = canvas.ImageFillStretch // the layout keeps it square
 	m.ExtendBaseWidget(m)
@@ -50,6 +53,15 @@ func (m *mapView) show(crossed bool, x, y float64, value string) {
 	m.Refresh()
 }
 
+// showPin marks where the followed ray enters, or takes the mark away.
+func (m *mapView) showPin(pinned bool, x, y float64) {
+	pin := fyne.NewPos(float32(x), float32(y))
+	if pinned != m.pinned || pin != m.pin {
+		m.pinned, m.pin = pinned, pin
+		m.Refresh()
+	}
+}
+
 // square returns where the picture lies within the widget.
 func (m *mapView) square() (fyne.Position, float32) {
 	size := m.Size()
@@ -57,17 +69,22 @@ func (m *mapView) square() (fyne.Position, float32) {
 	return fyne.NewPos((size.Width-edge)/2, (size.Height-edge)/2), edge
 }
 
-func (m *mapView) ask(at fyne.Position) {
+// shares returns a place of the widget as shares of the picture, false beside it.
+func (m *mapView) shares(at fyne.Position) (x, y float64, ok bool) {
 	corner, edge := m.square()
 	if edge <= 0 {
-		return
+		return 0, 0, false
 	}
-	x, y := float64((at.X-corner.X)/edge), float64((at.Y-corner.Y)/edge)
-	if x < 0 || y < 0 || x > 1 || y > 1 {
+	x, y = float64((at.X-corner.X)/edge), float64((at.Y-corner.Y)/edge)
+	return x, y, x >= 0 && y >= 0 && x <= 1 && y <= 1
+}
+
+func (m *mapView) ask(at fyne.Position) {
+	if x, y, ok := m.shares(at); ok {
+		m.point(x, y)
+	} else {
 		m.away()
-		return
 	}
-	m.point(x, y)
 }
 
 // MouseIn asks the maps.
@@ -79,12 +96,15 @@ func (m *mapView) MouseMoved(e *desktop.MouseEvent) { m.ask(e.Position) }
 // MouseOut ends asking.
 func (m *mapView) MouseOut() { m.away() }
 
-// MouseDown takes the focus, so that the arrow keys move the cross-hair.
+// MouseDown follows the ray under the pointer, and takes the focus, so that the arrow
+// keys move the cross-hair.
 func (m *mapView) MouseDown(e *desktop.MouseEvent) {
 	if c := fyne.CurrentApp().Driver().CanvasForObject(m); c != nil {
 		c.Focus(m)
 	}
-	m.ask(e.Position)
+	if x, y, ok := m.shares(e.Position); ok && e.Button == desktop.MouseButtonPrimary {
+		m.follow(x, y)
+	}
 }
 
 // MouseUp is not used.
@@ -93,7 +113,8 @@ func (m *mapView) MouseUp(*desktop.MouseEvent) {}
 // Cursor is a cross-hair.
 func (m *mapView) Cursor() desktop.Cursor { return desktop.CrosshairCursor }
 
-// TypedKey moves the cross-hair by a fiftieth of the map; Escape takes it away.
+// TypedKey moves the cross-hair by a fiftieth of the map; Enter follows the ray
+// there, Escape takes the cross-hair away.
 func (m *mapView) TypedKey(e *fyne.KeyEvent) {
 	const step = 0.02
 	at := m.cross
@@ -109,6 +130,8 @@ func (m *mapView) TypedKey(e *fyne.KeyEvent) {
 		at.Y -= step
 	case fyne.KeyDown:
 		at.Y += step
+	case fyne.KeyReturn, fyne.KeyEnter, fyne.KeySpace:
+		m.follow(float64(at.X), float64(at.Y))
 	case fyne.KeyEscape:
 		m.away()
 		return
@@ -130,13 +153,14 @@ func (m *mapView) FocusLost() { m.focused = false; m.Refresh() }
 // CreateRenderer builds the picture, the cross-hair and the number.
 func (m *mapView) CreateRenderer() fyne.WidgetRenderer {
 	r := &mapViewRenderer{m: m, frame: canvas.NewRectangle(color.Transparent),
-		plate: canvas.NewRectangle(color.Transparent), value: canvas.NewText("", color.Transparent)}
+		plate: canvas.NewRectangle(color.Transparent), pin: canvas.NewCircle(color.Transparent),
+		halo: canvas.NewCircle(color.Transparent), value: canvas.NewText("", color.Transparent)}
 	for i := range r.hair {
 		r.hair[i] = canvas.NewRectangle(color.Transparent)
 	}
 	r.plate.CornerRadius = 3
 	r.value.TextStyle.Bold = true
-	r.objects = []fyne.CanvasObject{m.picture, r.hair[0], r.hair[1], r.hair[2], r.hair[3], r.plate, r.value, r.frame}
+	r.objects = []fyne.CanvasObject{m.picture, r.hair[0], r.hair[1], r.hair[2], r.hair[3], r.halo, r.pin, r.plate, r.value, r.frame}
 	r.Refresh()
 	return r
 }
@@ -145,6 +169,7 @@ type mapViewRenderer struct {
 	m            *mapView
 	hair         [4]*canvas.Rectangle // dark and broad below, light and thin above
 	frame, plate *canvas.Rectangle
+	pin, halo    *canvas.Circle // light over dark
 	value        *canvas.Text
 	objects      []fyne.CanvasObject
 }
@@ -167,6 +192,10 @@ func (r *mapViewRenderer) Layout(fyne.Size) {
 		down.Move(fyne.NewPos(x-broad/2, corner.Y))
 		down.Resize(fyne.NewSize(broad, edge))
 	}
+	px, py := corner.X+r.m.pin.X*edge, corner.Y+r.m.pin.Y*edge
+	const pin = 5
+	place(r.halo, px-pin-1, py-pin-1, 2*pin+2, 2*pin+2)
+	place(r.pin, px-pin, py-pin, 2*pin, 2*pin)
 	size := r.value.MinSize()
 	// The number keeps to the upper left corner, and gives way to the pointer.
 	at := corner.AddXY(3, 3)
@@ -188,6 +217,9 @@ func (r *mapViewRenderer) Refresh() {
 		}
 		h.Hidden = !m.crossed
 	}
+	r.halo.StrokeColor, r.halo.StrokeWidth = color.NRGBA{0, 0, 0, 200}, 4
+	r.pin.StrokeColor, r.pin.StrokeWidth = color.White, 2
+	r.pin.Hidden, r.halo.Hidden = !m.pinned, !m.pinned
 	r.value.Text, r.value.TextSize = m.value, theme.TextSize()
 	r.value.Color, r.plate.FillColor = themed(theme.ColorNameForeground), themed(colourPane)
 	r.value.Hidden = !m.crossed || m.value == ""

@@ -52,7 +52,7 @@ type paneLayout struct {
 const (
 	planWide    = 272
 	planNarrow  = 250
-	stoneWide   = 262
+	stoneWide   = 276
 	stoneNarrow = 236
 	narrow      = 1180
 	paneGap     = 6

@@ -4,6 +4,7 @@ import (
 	"image"
 	"image/color"
 	"math"
+	"strconv"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
@@ -11,8 +12,10 @@ import (
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
 
+	"pavilight/app/model"
 	"pavilight/app/solid"
 	"pavilight/facets"
+	"pavilight/trace"
 )
 
 // solidView shows the stone as a solid that turns under the pointer, with the
@@ -24,6 +27,8 @@ type solidView struct {
 	pose     solid.Pose
 	selected string
 	pick     func(tier string)
+
+	ray *model.Ray // drawn through the stone; nil for none
 
 	picture *canvas.Image
 	drawing *solid.Drawing
@@ -90,8 +95,7 @@ func (s *solidView) redraw() {
 		dst = image.NewRGBA(image.Rect(0, 0, width, height))
 		s.picture.Image = dst
 	}
-	s.drawing = solid.Project(s.stone, s.pose, width, height)
-	s.drawing.Paint(dst, solid.Style{
+	style := solid.Style{
 		Width:    float64(1.25 * s.scale),
 		Selected: s.selected,
 		Colours: solid.Colours{
@@ -101,10 +105,68 @@ func (s *solidView) redraw() {
 			Edge:     themedRGBA(colourEdge),
 			Selected: themedRGBA(theme.ColorNamePrimary),
 		},
-	})
-	const least = 150 // square units of a facet that takes a name
-	s.labels = s.drawing.Labels(float64(least * s.scale * s.scale))
+	}
+	if s.ray != nil && s.ray.Path != nil && s.ray.Stone == s.stone {
+		s.drawing = solid.Project(s.stone, s.pose, width, height, withRay)
+		style.Glass, style.Colours.Hidden = 0.72, themedRGBA(colourBack)
+		style.Colours.Edge = themedRGBA(colourDim)
+		style.Rays = s.rays()
+		s.drawing.Paint(dst, style)
+		s.labels = s.bounceLabels()
+	} else {
+		s.drawing = solid.Project(s.stone, s.pose, width, height, alone)
+		s.drawing.Paint(dst, style)
+		const least = 150 // square units of a facet that takes a name
+		s.labels = s.drawing.Labels(float64(least * s.scale * s.scale))
+	}
 	s.Refresh()
+}
+
+// How much of the picture the stone takes by itself, and with light around it.
+const (
+	alone   = 0.88
+	withRay = 0.72
+)
+
+// rays returns the followed ray as lines, each over a darker or lighter one so that
+// it stands out from the stone.
+func (s *solidView) rays() []solid.Ray {
+	var casings, lines []solid.Ray
+	for _, p := range s.ray.Stretches(0.7 * solid.Radius(s.stone)) {
+		width := float64(s.scale) * (1 + 1.8*p.Share)
+		c := themedRGBA(theme.ColorNameForeground)
+		if !p.Inside && p.Bounce >= 0 || p.Goes == trace.Surface && !p.Inside {
+			c = color.RGBAModel.Convert(entryColour(p.Goes)).(color.RGBA)
+		}
+		if p.Bounce == s.ray.Step && p.Bounce >= 0 {
+			width += 1.6 * float64(s.scale)
+			if p.Inside {
+				c = themedRGBA(theme.ColorNamePrimary)
+			}
+		}
+		casings = append(casings, solid.Ray{From: p.From, To: p.To, Colour: themedRGBA(colourPane), Width: width + 2*float64(s.scale)})
+		lines = append(lines, solid.Ray{From: p.From, To: p.To, Colour: c, Width: width})
+	}
+	return append(casings, lines...)
+}
+
+// bounceLabels numbers the bounces that carry enough to be followed by eye.
+func (s *solidView) bounceLabels() []solid.Label {
+	var labels []solid.Label
+	for i, b := range s.ray.Path.Bounces {
+		const faint = 0.02
+		if b.Arrived < faint || i >= mostLabels {
+			break
+		}
+		at := s.drawing.Point(b.At)
+		labels = append(labels, solid.Label{Tier: strconv.Itoa(i + 1), X: at[0], Y: at[1]})
+	}
+	return labels
+}
+
+func (s *solidView) showRay(r *model.Ray) {
+	s.ray = r
+	s.redraw()
 }
 
 // Resize draws anew.

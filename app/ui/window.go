@@ -52,6 +52,10 @@ type window struct {
 	head     *numberField
 	solid    *solidView
 	facts    *factTable
+	factBox  *container.Scroll
+	rayBox   *fyne.Container
+	rayTitle *wrapped
+	ray      *rayList
 
 	message *line
 	light   *line
@@ -120,6 +124,8 @@ func (w *window) build() {
 		return f
 	}
 	w.tilt = degrees(func(s *trace.Settings, a facets.Angle) { s.View.Tilt = a }, 80, "the tilt", 1)
+	w.tilt.read, w.tilt.commit = readTilt, w.setTilt
+	w.grid.onTilt = func(a facets.Angle) { w.say(w.setTilt(a.Degrees())) }
 	w.head = degrees(func(s *trace.Settings, a facets.Angle) { s.Head = a }, 60, "the half-angle of the viewer's head", 1)
 	w.turn = newNumberField(func(s string) (float64, error) { return model.ParseNumber(s, "") },
 		func(v float64) string { return fmt.Sprintf("%.4g", v) }, 1)
@@ -139,8 +145,32 @@ func (w *window) build() {
 		w.list.reveal(tier)
 	})
 	w.facts = newFactTable()
+	w.rayTitle = newWrapped(theme.ColorNameForeground, theme.SizeNameText)
+	w.ray = newRayList(w.bench.Look.PickBounce)
 	w.message = newLine(colourDim, theme.SizeNameCaptionText)
 	w.light = newLine(colourDim, theme.SizeNameCaptionText).aligned(fyne.TextAlignTrailing)
+}
+
+// readTilt reads an angle that may be negative: the stone rocked the other way.
+func readTilt(text string) (float64, error) {
+	for _, minus := range []string{"-", "−", "–"} {
+		if rest, negative := strings.CutPrefix(strings.TrimSpace(text), minus); negative {
+			deg, err := readDegrees(rest)
+			return -deg, err
+		}
+	}
+	return readDegrees(text)
+}
+
+func (w *window) setTilt(deg float64) error {
+	const most = 80
+	if !(deg >= -most && deg <= most) {
+		return fmt.Errorf("the tilt goes from -%d° to %d°", most, most)
+	}
+	w.bench.Look.Adjust(func(s *trace.Settings) { s.View.Tilt = facets.Angle(deg) * facets.Degree })
+	w.refreshLight()
+	w.grid.strip.Refresh()
+	return nil
 }
 
 // content puts the window together: header, panes, status line.
@@ -212,8 +242,19 @@ func (w *window) stonePane() fyne.CanvasObject {
 	poses := container.NewGridWithColumns(4, pose("Table", solid.FaceUp), pose("Side", solid.Profile),
 		pose("Culet", solid.FaceDown), pose("Askew", restingPose))
 	top := container.New(&squareLayout{}, w.solid, poses)
-	return pane(container.NewBorder(top, nil, nil, nil,
-		container.NewVScroll(container.New(layout.NewCustomPaddedLayout(8, 8, 14, 14), w.facts.box))))
+	w.factBox = container.NewVScroll(container.New(layout.NewCustomPaddedLayout(8, 8, 14, 14), w.facts.box))
+	copies := widget.NewButton("Copy", func() {
+		if r := w.bench.Look.Ray; r != nil {
+			w.app.Clipboard().SetContent(r.Text())
+			w.report("The ray is on the clipboard, as a table.")
+		}
+	})
+	closes := widget.NewButton("Let go", w.bench.Look.Unfollow)
+	w.rayBox = container.New(layout.NewCustomPaddedLayout(8, 8, 14, 10), container.NewBorder(
+		container.NewGridWrap(fyne.NewSize(stoneNarrow-24, 2*lineHeight()), w.rayTitle),
+		container.NewGridWithColumns(2, copies, closes), nil, nil, container.NewVScroll(w.ray)))
+	w.rayBox.Hide()
+	return pane(container.NewBorder(top, nil, nil, nil, container.NewStack(w.factBox, w.rayBox)))
 }
 
 func ground(name fyne.ThemeColorName) fyne.CanvasObject { return newGround(name) }
@@ -283,6 +324,13 @@ func (w *window) onLook(c model.Change) {
 		}
 	case model.StateChanged:
 		w.refreshProgress()
+	case model.RayChanged:
+		w.refreshRay()
+	case model.StripChanged:
+		w.grid.strip.show()
+		if w.bench.Look.Strip.Done {
+			w.tell("rocked")
+		}
 	case model.PointerChanged:
 		w.grid.refreshPointer()
 		w.refreshPointer()
@@ -338,6 +386,22 @@ func (w *window) refreshFacts() {
 	w.weight.setText(w.bench.Weight())
 }
 
+// refreshRay shows the followed ray, in the maps, in the stone and as a list.
+func (w *window) refreshRay() {
+	r := w.bench.Look.Ray
+	w.grid.refreshRay()
+	w.solid.showRay(r)
+	setVisible(w.rayBox, r != nil)
+	setVisible(w.factBox, r == nil)
+	if r == nil {
+		return
+	}
+	w.rayTitle.setText(r.Title())
+	lines, more := r.Lines()
+	w.ray.show(lines, more, r.Step)
+	w.once("followed")
+}
+
 func (w *window) refreshLight() {
 	s := w.bench.Look.Settings()
 	w.tilt.show(s.View.Tilt.Degrees())
@@ -387,7 +451,13 @@ func (w *window) stopOrResume() {
 
 // strayKey takes keys that no widget wants.
 func (w *window) strayKey(e *fyne.KeyEvent) {
-	if e.Name == fyne.KeyEscape && w.bench.Look.Progress().Active {
+	if e.Name != fyne.KeyEscape {
+		return
+	}
+	switch {
+	case w.bench.Look.Ray != nil:
+		w.bench.Look.Unfollow()
+	case w.bench.Look.Progress().Active:
 		w.bench.Look.Stop()
 	}
 }
