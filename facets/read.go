@@ -674,15 +674,16 @@ func (r *reader) checkTier(t *Tier, hasSide, hasIndex bool, indexLine int) {
 	}
 	deg := t.Angle.Degrees()
 	flat := t.Side == Table || t.Stop.Rule == StopCulet || t.HasAngle && deg == 0
+	angleLine := t.block.lineOf("angle")
 	switch {
 	case t.Side == Table && t.HasAngle && deg != 0:
-		r.fault(t.Line, "angle", number(deg), "a table is level", "leave the angle out, or put the tier on the crown side")
+		r.fault(angleLine, "angle", number(deg), "a table is level", "leave the angle out, or put the tier on the crown side")
 	case t.Side == Girdle && t.HasAngle && deg != 90:
-		r.fault(t.Line, "angle", number(deg), "a girdle facet stands upright", "leave the angle out, or put the tier on the crown or pavilion side")
+		r.fault(angleLine, "angle", number(deg), "a girdle facet stands upright", "leave the angle out, or put the tier on the crown or pavilion side")
 	case t.Side == Crown && t.HasAngle && deg == 0:
-		r.fault(t.Line, "angle", "0", "a level facet on top is the table", "write side = \"table\"")
+		r.fault(angleLine, "angle", "0", "a level facet on top is the table", "write side = \"table\"")
 	case (t.Side == Crown || t.Side == Pavilion) && t.HasAngle && deg == 90:
-		r.fault(t.Line, "angle", "90", "an upright facet belongs to the girdle", "write side = \"girdle\"")
+		r.fault(angleLine, "angle", "90", "an upright facet belongs to the girdle", "write side = \"girdle\"")
 	case t.Stop.Rule == StopTable && t.Side != Table:
 		r.fault(t.Stop.Line, "table", "", "the rule is for the table only", "write side = \"table\" or use another rule")
 	case t.Stop.Rule == StopCulet && (t.Side != Pavilion || t.HasAngle && deg != 0):
@@ -708,16 +709,19 @@ func (r *reader) checkTier(t *Tier, hasSide, hasIndex bool, indexLine int) {
 			r.fault(t.Stop.Line, "meet", markNames(c), "a corner needs three planes", "name all three; the axis counts for two")
 		}
 	}
-	if flat && len(expand(orZero(t.Index), t.Fold, t.Mirror, max(r.plan.Gear, 3))) > 1 {
-		r.fault(indexLine, "index", fmt.Sprint(t.Index), "a level flat is one facet wherever the index stands", "give one index or none")
+	if flat && t.Side != Crown && (len(t.Index) > 1 || t.Fold > 1 || t.Mirror) {
+		r.fault(indexLine, "index", "", "a level flat is one facet wherever the index stands", "give one index or none")
 	}
 }
 
-func orZero(index []float64) []float64 {
-	if len(index) == 0 {
-		return []float64{0}
+// lineOf returns the line of a key, or of the block if it has no such key.
+func (b *block) lineOf(key string) int {
+	for _, e := range b.entries {
+		if e.key == key {
+			return e.line
+		}
 	}
-	return index
+	return b.line
 }
 
 func markNames(c []Mark) string {
@@ -746,22 +750,17 @@ func (r *reader) together() {
 		} else {
 			at[t.Name] = i
 		}
-		total += max(1, len(t.Index)) * max(1, t.Fold) * 2
-		if total > 4*MaxPlanFacets {
-			break
-		}
 	}
-	r.tier = ""
-	total = 0
 	for i := range p.Tiers {
 		t := &p.Tiers[i]
+		r.tier = t.Name
 		if n := max(1, len(t.Index)) * max(1, t.Fold); n > MaxPlanFacets {
 			total += n
 		} else {
 			total += len(t.Indices(max(3, p.Gear)))
 		}
 		if total > MaxPlanFacets {
-			r.fault(t.Line, "", "", fmt.Sprintf("the plan has more than %d facets", MaxPlanFacets), "leave some out")
+			r.fault(t.Line, "", "", fmt.Sprintf("here the plan goes beyond %d facets", MaxPlanFacets), "leave some out")
 			return
 		}
 	}
