@@ -15,19 +15,28 @@ import (
 // busy groups.
 //
 //go:noescape
-func look(f *flight)
+func aim(t *tables, f *flight)
 
 //go:noescape
-func settle(f *flight)
+func look(t *tables, f *flight)
 
 //go:noescape
-func surfaceAveraged(f *flight)
+func settle(t *tables, f *flight)
 
 //go:noescape
-func surfacePolarised(f *flight)
+func mirrorAveraged(t *tables, f *flight)
 
 //go:noescape
-func tally(f *flight)
+func mirrorPolarised(t *tables, f *flight)
+
+//go:noescape
+func splitAveraged(t *tables, f *flight)
+
+//go:noescape
+func splitPolarised(t *tables, f *flight)
+
+//go:noescape
+func tally(t *tables, f *flight)
 
 // hasVectors reports whether this processor has what the passes are written in.
 func hasVectors() bool { return cpu.X86.HasAVX2 && cpu.X86.HasFMA }
@@ -52,36 +61,40 @@ type group struct {
 	ax, ay, az eight // its axis a; see beam. b is direction × a
 	eta        eight // index of the stone over that of the medium
 
+	c, g2, cos2, sin2        eight // at the surface; see the passes
 	through, up              eight // what goes through at the surface, and its cosine to the eye
 	returned, head, leaked   eight // ledger so far
 	unmet, windowed, bounces eightInts
 	die                      eightInts // of the end-game
 	bins                     eightInts // byte offset of the ray's bins in flight.bins
 
-	cell eightInts  // scratch
+	list eightInts  // of the facets in the direction of the exit
+	bin  eightInts  // scratch
 	wide [8]float64 // scratch
 	over int32      // bits of the rays whose path is over
-	_    [7]int32
+	_    [7]int32   // a whole number of cache lines
 }
 
 // flight is the rays that are followed at the same time. The passes work on groups;
-// between them rays that are done make room for others.
+// between them rays that are done make room for others. A flight holds no pointer, so
+// that it is allocated on the boundary of a cache line.
 type flight struct {
-	cells   *uint16     // map by direction: number of the list of each cell
-	lists   *list       // lists by number
-	planes  *[4]float32 // m and twice the number of each facet
-	normals *[4]float32 // n and n.eye of each facet
-	bins    *float64
-	busy    int // groups in use
-
 	eyex, eyey, eyez eight
 	headCos          eight
 	faint, cut       eight
 	most, pavilion   eightInts // last bounce; twice the number of pavilion facets, which come first
 
-	_ [2]int64
-
 	groups [inFlight / 8]group
+}
+
+// tables is what the passes look up.
+type tables struct {
+	cells   *uint16     // map by direction: number of the list of each cell
+	lists   *list       // lists by number
+	planes  *[4]float32 // m and twice the number of each facet
+	normals *[4]float32 // n and n.eye of each facet
+	bins    *float64    // of the angle from the eye
+	busy    int         // groups of the flight in use
 }
 
 // list is two of the facets that can be the largest in a direction, and where more
@@ -179,13 +192,12 @@ func spreadInt(v int) (e eightInts) {
 func (k *kernel) follow(rays []ray, out []Ledger, columns []sums) {
 	t := k.tracer
 	f := &flight{
-		cells: &k.cells[0], lists: &k.lists[0], planes: &k.planes[0], normals: &k.normals[0],
 		eyex: spreadFloat(t.outline.eye.x), eyey: spreadFloat(t.outline.eye.y), eyez: spreadFloat(t.outline.eye.z),
 		headCos: spreadFloat(t.headCos), faint: spreadFloat(t.faint), cut: spreadFloat(k.cut),
 		most: spreadInt(k.most - 1), pavilion: spreadInt(2 * k.pavilion),
 	}
 	bins := make([][8][fromBins]float64, len(columns))
-	f.bins = &bins[0][0][0]
+	in := &tables{&k.cells[0], &k.lists[0], &k.planes[0], &k.normals[0], &bins[0][0][0], 0}
 	var which [inFlight]int32 // ray by place
 	next := 0
 	enter := func(place int) bool {
@@ -203,18 +215,22 @@ func (k *kernel) follow(rays []ray, out []Ledger, columns []sums) {
 	for live < inFlight && enter(live) {
 		live++
 	}
-	surface := surfacePolarised
+	mirror, split := mirrorPolarised, splitPolarised
 	if t.averaged {
-		surface = surfaceAveraged
+		mirror, split = mirrorAveraged, splitAveraged
 	}
 	for live > 0 {
-		f.busy = (live + 7) / 8
-		look(f)
-		look(f)
-		settle(f)
-		surface(f)
-		tally(f)
-		for gi := f.busy - 1; gi >= 0; gi-- {
+		in.busy = (live + 7) / 8
+		aim(in, f)
+		look(in, f)
+		aim(in, f)
+		look(in, f)
+		aim(in, f)
+		settle(in, f)
+		mirror(in, f)
+		split(in, f)
+		tally(in, f)
+		for gi := in.busy - 1; gi >= 0; gi-- {
 			for over := uint32(f.groups[gi].over); over != 0; {
 				lane := bits.Len32(over) - 1
 				over &^= 1 << lane

@@ -3,105 +3,71 @@
 #include "textflag.h"
 #include "go_asm.h"
 
-// func look(f uintptr)
+// func aim(t uintptr, f uintptr)
 // Requires: AVX, AVX2, FMA3
-TEXT ·look(SB), NOSPLIT, $0-8
-	// One step toward the exit, by the likeliest facet.
-	MOVQ f+0(FP), AX
-	LEAQ flight_groups+0(AX), CX
-	MOVQ flight_busy+0(AX), DX
+TEXT ·aim(SB), NOSPLIT, $0-16
+	// Find the list of facets in the direction of each ray's exit.
+	MOVQ t+0(FP), AX
+	MOVQ f+8(FP), CX
+	LEAQ flight_groups+0(CX), CX
+	MOVQ tables_busy+0(AX), DX
 
 next:
-	VMOVUPS        group_s+0(CX), Y0
-	MOVQ           flight_cells+0(AX), BX
-	MOVQ           flight_lists+0(AX), SI
-	MOVQ           flight_planes+0(AX), DI
-	VMOVUPS        group_x+0(CX), Y1
-	VFMADD231PS    group_dx+0(CX), Y0, Y1
-	VMOVUPS        group_y+0(CX), Y2
-	VFMADD231PS    group_dy+0(CX), Y0, Y2
-	VMOVUPS        group_z+0(CX), Y3
-	VFMADD231PS    group_dz+0(CX), Y0, Y3
-	VANDPS         magnitude<>+0(SB), Y1, Y4
-	VANDPS         magnitude<>+0(SB), Y2, Y5
-	VADDPS         Y5, Y4, Y4
-	VANDPS         magnitude<>+0(SB), Y3, Y5
-	VADDPS         Y5, Y4, Y4
-	VMOVUPS        f427ffffc<>+0(SB), Y5
-	VDIVPS         Y4, Y5, Y4
-	VMOVUPS        f42800000<>+0(SB), Y5
-	VMOVUPS        f42800000<>+0(SB), Y6
-	VFMADD231PS    Y4, Y1, Y5
-	VFMADD231PS    Y4, Y2, Y6
-	VCVTTPS2DQ     Y5, Y1
-	VCVTTPS2DQ     Y6, Y2
-	VPSLLD         $0x07, Y2, Y2
-	VPADDD         Y2, Y1, Y1
-	VPSRLD         $0x11, Y3, Y2
-	VPAND          lower<>+0(SB), Y2, Y2
-	VPADDD         Y2, Y1, Y1
-	VPAND          inTable<>+0(SB), Y1, Y1
-	VMOVUPS        Y1, group_cell+0(CX)
-	MOVL           group_cell+0(CX), R8
-	MOVWLZX        (BX)(R8*2), R8
-	MOVWLZX        (SI)(R8*8), R8
-	VBROADCASTF128 (DI)(R8*8), Y1
-	MOVL           group_cell+16(CX), R8
-	MOVWLZX        (BX)(R8*2), R8
-	MOVWLZX        (SI)(R8*8), R8
-	VINSERTF128    $0x01, (DI)(R8*8), Y1, Y1
-	MOVL           group_cell+4(CX), R8
-	MOVWLZX        (BX)(R8*2), R8
-	MOVWLZX        (SI)(R8*8), R8
-	VBROADCASTF128 (DI)(R8*8), Y2
-	MOVL           group_cell+20(CX), R8
-	MOVWLZX        (BX)(R8*2), R8
-	MOVWLZX        (SI)(R8*8), R8
-	VINSERTF128    $0x01, (DI)(R8*8), Y2, Y2
-	MOVL           group_cell+8(CX), R8
-	MOVWLZX        (BX)(R8*2), R8
-	MOVWLZX        (SI)(R8*8), R8
-	VBROADCASTF128 (DI)(R8*8), Y3
-	MOVL           group_cell+24(CX), R8
-	MOVWLZX        (BX)(R8*2), R8
-	MOVWLZX        (SI)(R8*8), R8
-	VINSERTF128    $0x01, (DI)(R8*8), Y3, Y3
-	MOVL           group_cell+12(CX), R8
-	MOVWLZX        (BX)(R8*2), R8
-	MOVWLZX        (SI)(R8*8), R8
-	VBROADCASTF128 (DI)(R8*8), Y4
-	MOVL           group_cell+28(CX), R8
-	MOVWLZX        (BX)(R8*2), R8
-	MOVWLZX        (SI)(R8*8), R8
-	VINSERTF128    $0x01, (DI)(R8*8), Y4, Y4
-	VUNPCKLPS      Y2, Y1, Y5
-	VUNPCKLPS      Y4, Y3, Y6
-	VUNPCKHPS      Y2, Y1, Y1
-	VUNPCKHPS      Y4, Y3, Y2
-	VUNPCKLPD      Y6, Y5, Y3
-	VUNPCKHPD      Y6, Y5, Y4
-	VUNPCKLPD      Y2, Y1, Y5
-	VUNPCKHPD      Y2, Y1, Y1
-	VMOVUPS        group_facet+0(CX), Y2
-	VMULPS         group_dx+0(CX), Y3, Y6
-	VFMADD231PS    group_dy+0(CX), Y4, Y6
-	VFMADD231PS    group_dz+0(CX), Y5, Y6
-	VMOVUPS        f3f800000<>+0(SB), Y7
-	VFNMADD231PS   group_x+0(CX), Y3, Y7
-	VFNMADD231PS   group_y+0(CX), Y4, Y7
-	VFNMADD231PS   group_z+0(CX), Y5, Y7
-	VDIVPS         Y6, Y7, Y3
-	VMAXPS         f00000000<>+0(SB), Y3, Y3
-	VCMPPS         $0x11, Y0, Y3, Y4
-	VCMPPS         $0x1e, f00000000<>+0(SB), Y6, Y5
-	VANDPS         Y5, Y4, Y4
-	VBLENDVPS      Y4, Y3, Y0, Y0
-	VBLENDVPS      Y4, Y1, Y2, Y1
-	VMOVUPS        Y0, group_s+0(CX)
-	VMOVUPS        Y1, group_facet+0(CX)
-	LEAQ           group__size+0(CX), CX
-	DECQ           DX
-	JNE            next
+	VMOVUPS     group_s+0(CX), Y0
+	VMOVUPS     group_x+0(CX), Y1
+	VFMADD231PS group_dx+0(CX), Y0, Y1
+	VMOVUPS     group_y+0(CX), Y2
+	VFMADD231PS group_dy+0(CX), Y0, Y2
+	VMOVUPS     group_z+0(CX), Y3
+	VFMADD231PS group_dz+0(CX), Y0, Y3
+	VANDPS      magnitude<>+0(SB), Y1, Y0
+	VANDPS      magnitude<>+0(SB), Y2, Y4
+	VADDPS      Y4, Y0, Y0
+	VANDPS      magnitude<>+0(SB), Y3, Y4
+	VADDPS      Y4, Y0, Y0
+	VMOVUPS     f427ffffc<>+0(SB), Y4
+	VDIVPS      Y0, Y4, Y0
+	VMOVUPS     f42800000<>+0(SB), Y4
+	VMOVUPS     f42800000<>+0(SB), Y5
+	VFMADD231PS Y0, Y1, Y4
+	VFMADD231PS Y0, Y2, Y5
+	VCVTTPS2DQ  Y4, Y0
+	VCVTTPS2DQ  Y5, Y1
+	VPSLLD      $0x07, Y1, Y1
+	VPADDD      Y1, Y0, Y0
+	VPSRLD      $0x11, Y3, Y1
+	VPAND       lower<>+0(SB), Y1, Y1
+	VPADDD      Y1, Y0, Y0
+	VPAND       inTable<>+0(SB), Y0, Y0
+	VMOVUPS     Y0, group_list+0(CX)
+	MOVQ        tables_cells+0(AX), BX
+	MOVL        group_list+0(CX), SI
+	MOVWLZX     (BX)(SI*2), SI
+	MOVL        SI, group_list+0(CX)
+	MOVL        group_list+4(CX), SI
+	MOVWLZX     (BX)(SI*2), SI
+	MOVL        SI, group_list+4(CX)
+	MOVL        group_list+8(CX), SI
+	MOVWLZX     (BX)(SI*2), SI
+	MOVL        SI, group_list+8(CX)
+	MOVL        group_list+12(CX), SI
+	MOVWLZX     (BX)(SI*2), SI
+	MOVL        SI, group_list+12(CX)
+	MOVL        group_list+16(CX), SI
+	MOVWLZX     (BX)(SI*2), SI
+	MOVL        SI, group_list+16(CX)
+	MOVL        group_list+20(CX), SI
+	MOVWLZX     (BX)(SI*2), SI
+	MOVL        SI, group_list+20(CX)
+	MOVL        group_list+24(CX), SI
+	MOVWLZX     (BX)(SI*2), SI
+	MOVL        SI, group_list+24(CX)
+	MOVL        group_list+28(CX), SI
+	MOVWLZX     (BX)(SI*2), SI
+	MOVL        SI, group_list+28(CX)
+	LEAQ        group__size+0(CX), CX
+	DECQ        DX
+	JNE         next
 	VZEROUPPER
 	RET
 
@@ -115,16 +81,6 @@ DATA magnitude<>+24(SB)/4, $0x7fffffff
 DATA magnitude<>+28(SB)/4, $0x7fffffff
 GLOBL magnitude<>(SB), RODATA|NOPTR, $32
 
-DATA f42800000<>+0(SB)/4, $0x42800000
-DATA f42800000<>+4(SB)/4, $0x42800000
-DATA f42800000<>+8(SB)/4, $0x42800000
-DATA f42800000<>+12(SB)/4, $0x42800000
-DATA f42800000<>+16(SB)/4, $0x42800000
-DATA f42800000<>+20(SB)/4, $0x42800000
-DATA f42800000<>+24(SB)/4, $0x42800000
-DATA f42800000<>+28(SB)/4, $0x42800000
-GLOBL f42800000<>(SB), RODATA|NOPTR, $32
-
 DATA f427ffffc<>+0(SB)/4, $0x427ffffc
 DATA f427ffffc<>+4(SB)/4, $0x427ffffc
 DATA f427ffffc<>+8(SB)/4, $0x427ffffc
@@ -134,6 +90,16 @@ DATA f427ffffc<>+20(SB)/4, $0x427ffffc
 DATA f427ffffc<>+24(SB)/4, $0x427ffffc
 DATA f427ffffc<>+28(SB)/4, $0x427ffffc
 GLOBL f427ffffc<>(SB), RODATA|NOPTR, $32
+
+DATA f42800000<>+0(SB)/4, $0x42800000
+DATA f42800000<>+4(SB)/4, $0x42800000
+DATA f42800000<>+8(SB)/4, $0x42800000
+DATA f42800000<>+12(SB)/4, $0x42800000
+DATA f42800000<>+16(SB)/4, $0x42800000
+DATA f42800000<>+20(SB)/4, $0x42800000
+DATA f42800000<>+24(SB)/4, $0x42800000
+DATA f42800000<>+28(SB)/4, $0x42800000
+GLOBL f42800000<>(SB), RODATA|NOPTR, $32
 
 DATA lower<>+0(SB)/4, $0x00004000
 DATA lower<>+4(SB)/4, $0x00004000
@@ -155,6 +121,74 @@ DATA inTable<>+24(SB)/4, $0x00007fff
 DATA inTable<>+28(SB)/4, $0x00007fff
 GLOBL inTable<>(SB), RODATA|NOPTR, $32
 
+// func look(t uintptr, f uintptr)
+// Requires: AVX, FMA3
+TEXT ·look(SB), NOSPLIT, $0-16
+	// One step toward the exit, by the likeliest facet.
+	MOVQ t+0(FP), AX
+	MOVQ f+8(FP), CX
+	LEAQ flight_groups+0(CX), CX
+	MOVQ tables_busy+0(AX), DX
+
+next:
+	MOVQ           tables_lists+0(AX), BX
+	MOVQ           tables_planes+0(AX), SI
+	MOVL           group_list+0(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VBROADCASTF128 (SI)(DI*8), Y0
+	MOVL           group_list+16(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y0, Y0
+	MOVL           group_list+4(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VBROADCASTF128 (SI)(DI*8), Y1
+	MOVL           group_list+20(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y1, Y1
+	MOVL           group_list+8(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VBROADCASTF128 (SI)(DI*8), Y2
+	MOVL           group_list+24(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y2, Y2
+	MOVL           group_list+12(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VBROADCASTF128 (SI)(DI*8), Y3
+	MOVL           group_list+28(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y3, Y3
+	VUNPCKLPS      Y1, Y0, Y4
+	VUNPCKLPS      Y3, Y2, Y5
+	VUNPCKHPS      Y1, Y0, Y0
+	VUNPCKHPS      Y3, Y2, Y1
+	VUNPCKLPD      Y5, Y4, Y2
+	VUNPCKHPD      Y5, Y4, Y3
+	VUNPCKLPD      Y1, Y0, Y4
+	VUNPCKHPD      Y1, Y0, Y0
+	VMOVUPS        group_s+0(CX), Y1
+	VMOVUPS        group_facet+0(CX), Y5
+	VMULPS         group_dx+0(CX), Y2, Y6
+	VFMADD231PS    group_dy+0(CX), Y3, Y6
+	VFMADD231PS    group_dz+0(CX), Y4, Y6
+	VMOVUPS        f3f800000<>+0(SB), Y7
+	VFNMADD231PS   group_x+0(CX), Y2, Y7
+	VFNMADD231PS   group_y+0(CX), Y3, Y7
+	VFNMADD231PS   group_z+0(CX), Y4, Y7
+	VDIVPS         Y6, Y7, Y2
+	VMAXPS         f00000000<>+0(SB), Y2, Y2
+	VCMPPS         $0x11, Y1, Y2, Y3
+	VCMPPS         $0x1e, f00000000<>+0(SB), Y6, Y4
+	VANDPS         Y4, Y3, Y3
+	VBLENDVPS      Y3, Y2, Y1, Y1
+	VBLENDVPS      Y3, Y0, Y5, Y0
+	VMOVUPS        Y1, group_s+0(CX)
+	VMOVUPS        Y0, group_facet+0(CX)
+	LEAQ           group__size+0(CX), CX
+	DECQ           DX
+	JNE            next
+	VZEROUPPER
+	RET
+
 DATA f3f800000<>+0(SB)/4, $0x3f800000
 DATA f3f800000<>+4(SB)/4, $0x3f800000
 DATA f3f800000<>+8(SB)/4, $0x3f800000
@@ -175,87 +209,46 @@ DATA f00000000<>+24(SB)/4, $0x00000000
 DATA f00000000<>+28(SB)/4, $0x00000000
 GLOBL f00000000<>(SB), RODATA|NOPTR, $32
 
-// func settle(f uintptr)
-// Requires: AVX, AVX2, FMA3
-TEXT ·settle(SB), NOSPLIT, $0-8
+// func settle(t uintptr, f uintptr)
+// Requires: AVX, FMA3
+TEXT ·settle(SB), NOSPLIT, $0-16
 	// One step toward the exit, by every facet that can be it; notes who has arrived.
-	MOVQ f+0(FP), AX
-	LEAQ flight_groups+0(AX), CX
-	MOVQ flight_busy+0(AX), DX
+	MOVQ t+0(FP), AX
+	MOVQ f+8(FP), CX
+	LEAQ flight_groups+0(CX), CX
+	MOVQ tables_busy+0(AX), DX
 
 next:
-	VMOVUPS        group_s+0(CX), Y0
-	VMOVUPS        group_facet+0(CX), Y1
-	MOVQ           flight_cells+0(AX), BX
-	MOVQ           flight_lists+0(AX), SI
-	MOVQ           flight_planes+0(AX), DI
-	VMOVUPS        group_x+0(CX), Y2
-	VFMADD231PS    group_dx+0(CX), Y0, Y2
-	VMOVUPS        group_y+0(CX), Y3
-	VFMADD231PS    group_dy+0(CX), Y0, Y3
-	VMOVUPS        group_z+0(CX), Y4
-	VFMADD231PS    group_dz+0(CX), Y0, Y4
-	VANDPS         magnitude<>+0(SB), Y2, Y5
-	VANDPS         magnitude<>+0(SB), Y3, Y6
-	VADDPS         Y6, Y5, Y5
-	VANDPS         magnitude<>+0(SB), Y4, Y6
-	VADDPS         Y6, Y5, Y5
-	VMOVUPS        f427ffffc<>+0(SB), Y6
-	VDIVPS         Y5, Y6, Y5
-	VMOVUPS        f42800000<>+0(SB), Y6
-	VMOVUPS        f42800000<>+0(SB), Y7
-	VFMADD231PS    Y5, Y2, Y6
-	VFMADD231PS    Y5, Y3, Y7
-	VCVTTPS2DQ     Y6, Y2
-	VCVTTPS2DQ     Y7, Y3
-	VPSLLD         $0x07, Y3, Y3
-	VPADDD         Y3, Y2, Y2
-	VPSRLD         $0x11, Y4, Y3
-	VPAND          lower<>+0(SB), Y3, Y3
-	VPADDD         Y3, Y2, Y2
-	VPAND          inTable<>+0(SB), Y2, Y2
-	VMOVUPS        Y2, group_cell+0(CX)
-	XORL           R9, R9
-	MOVL           group_cell+0(CX), R10
-	MOVWLZX        (BX)(R10*2), R10
-	MOVL           R10, group_cell+0(CX)
-	MOVWLZX        (SI)(R10*8), R8
-	VBROADCASTF128 (DI)(R8*8), Y2
-	MOVL           group_cell+16(CX), R10
-	MOVWLZX        (BX)(R10*2), R10
-	MOVL           R10, group_cell+16(CX)
-	MOVWLZX        (SI)(R10*8), R8
-	VINSERTF128    $0x01, (DI)(R8*8), Y2, Y2
-	MOVL           group_cell+4(CX), R10
-	MOVWLZX        (BX)(R10*2), R10
-	MOVL           R10, group_cell+4(CX)
-	MOVWLZX        (SI)(R10*8), R8
-	VBROADCASTF128 (DI)(R8*8), Y3
-	MOVL           group_cell+20(CX), R10
-	MOVWLZX        (BX)(R10*2), R10
-	MOVL           R10, group_cell+20(CX)
-	MOVWLZX        (SI)(R10*8), R8
-	VINSERTF128    $0x01, (DI)(R8*8), Y3, Y3
-	MOVL           group_cell+8(CX), R10
-	MOVWLZX        (BX)(R10*2), R10
-	MOVL           R10, group_cell+8(CX)
-	MOVWLZX        (SI)(R10*8), R8
-	VBROADCASTF128 (DI)(R8*8), Y4
-	MOVL           group_cell+24(CX), R10
-	MOVWLZX        (BX)(R10*2), R10
-	MOVL           R10, group_cell+24(CX)
-	MOVWLZX        (SI)(R10*8), R8
-	VINSERTF128    $0x01, (DI)(R8*8), Y4, Y4
-	MOVL           group_cell+12(CX), R10
-	MOVWLZX        (BX)(R10*2), R10
-	MOVL           R10, group_cell+12(CX)
-	MOVWLZX        (SI)(R10*8), R8
-	VBROADCASTF128 (DI)(R8*8), Y5
-	MOVL           group_cell+28(CX), R10
-	MOVWLZX        (BX)(R10*2), R10
-	MOVL           R10, group_cell+28(CX)
-	MOVWLZX        (SI)(R10*8), R8
-	VINSERTF128    $0x01, (DI)(R8*8), Y5, Y5
+	MOVQ    tables_lists+0(AX), BX
+	MOVQ    tables_planes+0(AX), SI
+	VMOVUPS group_s+0(CX), Y0
+	VMOVUPS group_facet+0(CX), Y1
+
+pair:
+	MOVL           group_list+0(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VBROADCASTF128 (SI)(DI*8), Y2
+	MOVL           group_list+16(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y2, Y2
+	MOVL           group_list+4(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VBROADCASTF128 (SI)(DI*8), Y3
+	MOVL           group_list+20(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y3, Y3
+	MOVL           group_list+8(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VBROADCASTF128 (SI)(DI*8), Y4
+	MOVL           group_list+24(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y4, Y4
+	MOVL           group_list+12(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VBROADCASTF128 (SI)(DI*8), Y5
+	MOVL           group_list+28(CX), DI
+	MOVWLZX        (BX)(DI*8), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y5, Y5
 	VUNPCKLPS      Y3, Y2, Y6
 	VUNPCKLPS      Y5, Y4, Y7
 	VUNPCKHPS      Y3, Y2, Y2
@@ -276,172 +269,120 @@ next:
 	VCMPPS         $0x11, Y0, Y4, Y5
 	VCMPPS         $0x1e, f00000000<>+0(SB), Y3, Y3
 	VANDPS         Y3, Y5, Y3
-	VBLENDVPS      Y3, Y4, Y0, Y4
+	VBLENDVPS      Y3, Y4, Y0, Y0
 	VBLENDVPS      Y3, Y2, Y1, Y1
-
-pair:
-	MOVL           group_cell+0(CX), R10
-	MOVWLZX        2(SI)(R10*8), R8
-	MOVWLZX        4(SI)(R10*8), R10
-	MOVL           R10, group_cell+0(CX)
-	ORL            R10, R9
-	VBROADCASTF128 (DI)(R8*8), Y2
-	MOVL           group_cell+16(CX), R10
-	MOVWLZX        2(SI)(R10*8), R8
-	MOVWLZX        4(SI)(R10*8), R10
-	MOVL           R10, group_cell+16(CX)
-	ORL            R10, R9
-	VINSERTF128    $0x01, (DI)(R8*8), Y2, Y2
-	MOVL           group_cell+4(CX), R10
-	MOVWLZX        2(SI)(R10*8), R8
-	MOVWLZX        4(SI)(R10*8), R10
-	MOVL           R10, group_cell+4(CX)
-	ORL            R10, R9
-	VBROADCASTF128 (DI)(R8*8), Y3
-	MOVL           group_cell+20(CX), R10
-	MOVWLZX        2(SI)(R10*8), R8
-	MOVWLZX        4(SI)(R10*8), R10
-	MOVL           R10, group_cell+20(CX)
-	ORL            R10, R9
-	VINSERTF128    $0x01, (DI)(R8*8), Y3, Y3
-	MOVL           group_cell+8(CX), R10
-	MOVWLZX        2(SI)(R10*8), R8
-	MOVWLZX        4(SI)(R10*8), R10
-	MOVL           R10, group_cell+8(CX)
-	ORL            R10, R9
-	VBROADCASTF128 (DI)(R8*8), Y5
-	MOVL           group_cell+24(CX), R10
-	MOVWLZX        2(SI)(R10*8), R8
-	MOVWLZX        4(SI)(R10*8), R10
-	MOVL           R10, group_cell+24(CX)
-	ORL            R10, R9
-	VINSERTF128    $0x01, (DI)(R8*8), Y5, Y5
-	MOVL           group_cell+12(CX), R10
-	MOVWLZX        2(SI)(R10*8), R8
-	MOVWLZX        4(SI)(R10*8), R10
-	MOVL           R10, group_cell+12(CX)
-	ORL            R10, R9
-	VBROADCASTF128 (DI)(R8*8), Y6
-	MOVL           group_cell+28(CX), R10
-	MOVWLZX        2(SI)(R10*8), R8
-	MOVWLZX        4(SI)(R10*8), R10
-	MOVL           R10, group_cell+28(CX)
-	ORL            R10, R9
-	VINSERTF128    $0x01, (DI)(R8*8), Y6, Y6
-	VUNPCKLPS      Y3, Y2, Y7
-	VUNPCKLPS      Y6, Y5, Y8
+	XORL           R9, R9
+	MOVL           group_list+0(CX), R8
+	MOVWLZX        2(BX)(R8*8), DI
+	MOVWLZX        4(BX)(R8*8), R8
+	MOVL           R8, group_list+0(CX)
+	ORL            R8, R9
+	VBROADCASTF128 (SI)(DI*8), Y2
+	MOVL           group_list+16(CX), R8
+	MOVWLZX        2(BX)(R8*8), DI
+	MOVWLZX        4(BX)(R8*8), R8
+	MOVL           R8, group_list+16(CX)
+	ORL            R8, R9
+	VINSERTF128    $0x01, (SI)(DI*8), Y2, Y2
+	MOVL           group_list+4(CX), R8
+	MOVWLZX        2(BX)(R8*8), DI
+	MOVWLZX        4(BX)(R8*8), R8
+	MOVL           R8, group_list+4(CX)
+	ORL            R8, R9
+	VBROADCASTF128 (SI)(DI*8), Y3
+	MOVL           group_list+20(CX), R8
+	MOVWLZX        2(BX)(R8*8), DI
+	MOVWLZX        4(BX)(R8*8), R8
+	MOVL           R8, group_list+20(CX)
+	ORL            R8, R9
+	VINSERTF128    $0x01, (SI)(DI*8), Y3, Y3
+	MOVL           group_list+8(CX), R8
+	MOVWLZX        2(BX)(R8*8), DI
+	MOVWLZX        4(BX)(R8*8), R8
+	MOVL           R8, group_list+8(CX)
+	ORL            R8, R9
+	VBROADCASTF128 (SI)(DI*8), Y4
+	MOVL           group_list+24(CX), R8
+	MOVWLZX        2(BX)(R8*8), DI
+	MOVWLZX        4(BX)(R8*8), R8
+	MOVL           R8, group_list+24(CX)
+	ORL            R8, R9
+	VINSERTF128    $0x01, (SI)(DI*8), Y4, Y4
+	MOVL           group_list+12(CX), R8
+	MOVWLZX        2(BX)(R8*8), DI
+	MOVWLZX        4(BX)(R8*8), R8
+	MOVL           R8, group_list+12(CX)
+	ORL            R8, R9
+	VBROADCASTF128 (SI)(DI*8), Y5
+	MOVL           group_list+28(CX), R8
+	MOVWLZX        2(BX)(R8*8), DI
+	MOVWLZX        4(BX)(R8*8), R8
+	MOVL           R8, group_list+28(CX)
+	ORL            R8, R9
+	VINSERTF128    $0x01, (SI)(DI*8), Y5, Y5
+	VUNPCKLPS      Y3, Y2, Y6
+	VUNPCKLPS      Y5, Y4, Y7
 	VUNPCKHPS      Y3, Y2, Y2
-	VUNPCKHPS      Y6, Y5, Y3
-	VUNPCKLPD      Y8, Y7, Y5
-	VUNPCKHPD      Y8, Y7, Y6
-	VUNPCKLPD      Y3, Y2, Y7
+	VUNPCKHPS      Y5, Y4, Y3
+	VUNPCKLPD      Y7, Y6, Y4
+	VUNPCKHPD      Y7, Y6, Y5
+	VUNPCKLPD      Y3, Y2, Y6
 	VUNPCKHPD      Y3, Y2, Y2
-	VMULPS         group_dx+0(CX), Y5, Y3
-	VFMADD231PS    group_dy+0(CX), Y6, Y3
-	VFMADD231PS    group_dz+0(CX), Y7, Y3
-	VMOVUPS        f3f800000<>+0(SB), Y8
-	VFNMADD231PS   group_x+0(CX), Y5, Y8
-	VFNMADD231PS   group_y+0(CX), Y6, Y8
-	VFNMADD231PS   group_z+0(CX), Y7, Y8
-	VDIVPS         Y3, Y8, Y5
-	VMAXPS         f00000000<>+0(SB), Y5, Y5
-	VCMPPS         $0x11, Y4, Y5, Y6
+	VMULPS         group_dx+0(CX), Y4, Y3
+	VFMADD231PS    group_dy+0(CX), Y5, Y3
+	VFMADD231PS    group_dz+0(CX), Y6, Y3
+	VMOVUPS        f3f800000<>+0(SB), Y7
+	VFNMADD231PS   group_x+0(CX), Y4, Y7
+	VFNMADD231PS   group_y+0(CX), Y5, Y7
+	VFNMADD231PS   group_z+0(CX), Y6, Y7
+	VDIVPS         Y3, Y7, Y4
+	VMAXPS         f00000000<>+0(SB), Y4, Y4
+	VCMPPS         $0x11, Y0, Y4, Y5
 	VCMPPS         $0x1e, f00000000<>+0(SB), Y3, Y3
-	VANDPS         Y3, Y6, Y3
-	VBLENDVPS      Y3, Y5, Y4, Y4
+	VANDPS         Y3, Y5, Y3
+	VBLENDVPS      Y3, Y4, Y0, Y0
 	VBLENDVPS      Y3, Y2, Y1, Y1
-	VMOVAPS        Y4, Y4
+	VMOVAPS        Y0, Y0
 	VMOVAPS        Y1, Y1
 	TESTL          R9, R9
-	JEQ            settled
-	XORL           R9, R9
-	MOVL           group_cell+0(CX), R10
-	MOVWLZX        (SI)(R10*8), R8
-	VBROADCASTF128 (DI)(R8*8), Y2
-	MOVL           group_cell+16(CX), R10
-	MOVWLZX        (SI)(R10*8), R8
-	VINSERTF128    $0x01, (DI)(R8*8), Y2, Y2
-	MOVL           group_cell+4(CX), R10
-	MOVWLZX        (SI)(R10*8), R8
-	VBROADCASTF128 (DI)(R8*8), Y3
-	MOVL           group_cell+20(CX), R10
-	MOVWLZX        (SI)(R10*8), R8
-	VINSERTF128    $0x01, (DI)(R8*8), Y3, Y3
-	MOVL           group_cell+8(CX), R10
-	MOVWLZX        (SI)(R10*8), R8
-	VBROADCASTF128 (DI)(R8*8), Y5
-	MOVL           group_cell+24(CX), R10
-	MOVWLZX        (SI)(R10*8), R8
-	VINSERTF128    $0x01, (DI)(R8*8), Y5, Y5
-	MOVL           group_cell+12(CX), R10
-	MOVWLZX        (SI)(R10*8), R8
-	VBROADCASTF128 (DI)(R8*8), Y6
-	MOVL           group_cell+28(CX), R10
-	MOVWLZX        (SI)(R10*8), R8
-	VINSERTF128    $0x01, (DI)(R8*8), Y6, Y6
-	VUNPCKLPS      Y3, Y2, Y7
-	VUNPCKLPS      Y6, Y5, Y8
-	VUNPCKHPS      Y3, Y2, Y2
-	VUNPCKHPS      Y6, Y5, Y3
-	VUNPCKLPD      Y8, Y7, Y5
-	VUNPCKHPD      Y8, Y7, Y6
-	VUNPCKLPD      Y3, Y2, Y7
-	VUNPCKHPD      Y3, Y2, Y2
-	VMULPS         group_dx+0(CX), Y5, Y3
-	VFMADD231PS    group_dy+0(CX), Y6, Y3
-	VFMADD231PS    group_dz+0(CX), Y7, Y3
-	VMOVUPS        f3f800000<>+0(SB), Y8
-	VFNMADD231PS   group_x+0(CX), Y5, Y8
-	VFNMADD231PS   group_y+0(CX), Y6, Y8
-	VFNMADD231PS   group_z+0(CX), Y7, Y8
-	VDIVPS         Y3, Y8, Y5
-	VMAXPS         f00000000<>+0(SB), Y5, Y5
-	VCMPPS         $0x11, Y4, Y5, Y6
-	VCMPPS         $0x1e, f00000000<>+0(SB), Y3, Y3
-	VANDPS         Y3, Y6, Y3
-	VBLENDVPS      Y3, Y5, Y4, Y4
-	VBLENDVPS      Y3, Y2, Y1, Y1
-	VMOVAPS        Y4, Y4
-	VMOVAPS        Y1, Y1
-	JMP            pair
-
-settled:
-	VCMPPS  $0x00, Y4, Y0, Y0
-	VMOVUPS Y0, group_arrived+0(CX)
-	VMOVUPS Y4, group_s+0(CX)
-	VMOVUPS Y1, group_facet+0(CX)
-	LEAQ    group__size+0(CX), CX
-	DECQ    DX
-	JNE     next
+	JNE            pair
+	VCMPPS         $0x00, group_s+0(CX), Y0, Y2
+	VMOVUPS        Y2, group_arrived+0(CX)
+	VMOVUPS        Y0, group_s+0(CX)
+	VMOVUPS        Y1, group_facet+0(CX)
+	LEAQ           group__size+0(CX), CX
+	DECQ           DX
+	JNE            next
 	VZEROUPPER
 	RET
 
-// func surfaceAveraged(f uintptr)
-// Requires: AVX, AVX2, FMA3
-TEXT ·surfaceAveraged(SB), NOSPLIT, $0-8
-	// Split the light of the rays that have arrived and mirror what stays.
-	MOVQ f+0(FP), AX
-	LEAQ flight_groups+0(AX), CX
-	MOVQ flight_busy+0(AX), DX
+// func mirrorAveraged(t uintptr, f uintptr)
+// Requires: AVX, FMA3
+TEXT ·mirrorAveraged(SB), NOSPLIT, $0-16
+	// Move the rays that have arrived to their exit, and mirror them there.
+	MOVQ t+0(FP), AX
+	MOVQ f+8(FP), CX
+	LEAQ flight_groups+0(CX), DX
+	MOVQ tables_busy+0(AX), BX
 
 next:
-	MOVQ           flight_normals+0(AX), BX
-	MOVL           group_facet+0(CX), SI
-	VBROADCASTF128 (BX)(SI*8), Y0
-	MOVL           group_facet+16(CX), SI
-	VINSERTF128    $0x01, (BX)(SI*8), Y0, Y0
-	MOVL           group_facet+4(CX), SI
-	VBROADCASTF128 (BX)(SI*8), Y1
-	MOVL           group_facet+20(CX), SI
-	VINSERTF128    $0x01, (BX)(SI*8), Y1, Y1
-	MOVL           group_facet+8(CX), SI
-	VBROADCASTF128 (BX)(SI*8), Y2
-	MOVL           group_facet+24(CX), SI
-	VINSERTF128    $0x01, (BX)(SI*8), Y2, Y2
-	MOVL           group_facet+12(CX), SI
-	VBROADCASTF128 (BX)(SI*8), Y3
-	MOVL           group_facet+28(CX), SI
-	VINSERTF128    $0x01, (BX)(SI*8), Y3, Y3
+	MOVQ           tables_normals+0(AX), SI
+	MOVL           group_facet+0(DX), DI
+	VBROADCASTF128 (SI)(DI*8), Y0
+	MOVL           group_facet+16(DX), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y0, Y0
+	MOVL           group_facet+4(DX), DI
+	VBROADCASTF128 (SI)(DI*8), Y1
+	MOVL           group_facet+20(DX), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y1, Y1
+	MOVL           group_facet+8(DX), DI
+	VBROADCASTF128 (SI)(DI*8), Y2
+	MOVL           group_facet+24(DX), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y2, Y2
+	MOVL           group_facet+12(DX), DI
+	VBROADCASTF128 (SI)(DI*8), Y3
+	MOVL           group_facet+28(DX), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y3, Y3
 	VUNPCKLPS      Y1, Y0, Y4
 	VUNPCKLPS      Y3, Y2, Y5
 	VUNPCKHPS      Y1, Y0, Y0
@@ -450,123 +391,71 @@ next:
 	VUNPCKHPD      Y5, Y4, Y3
 	VUNPCKLPD      Y1, Y0, Y4
 	VUNPCKHPD      Y1, Y0, Y0
-	VMULPS         group_dx+0(CX), Y2, Y1
-	VFMADD231PS    group_dy+0(CX), Y3, Y1
-	VFMADD231PS    group_dz+0(CX), Y4, Y1
+	VMULPS         group_dx+0(DX), Y2, Y1
+	VFMADD231PS    group_dy+0(DX), Y3, Y1
+	VFMADD231PS    group_dz+0(DX), Y4, Y1
 	VMAXPS         f358637bd<>+0(SB), Y1, Y1
-	VMOVUPS        group_eta+0(CX), Y5
+	VMOVUPS        Y1, group_c+0(DX)
+	VMOVUPS        group_eta+0(DX), Y5
 	VMULPS         Y5, Y5, Y6
 	VMOVUPS        f3f800000<>+0(SB), Y7
 	VSUBPS         Y6, Y7, Y7
 	VMULPS         Y1, Y1, Y8
 	VFMADD231PS    Y6, Y8, Y7
-	VANDPS         magnitude<>+0(SB), Y7, Y6
-	VSQRTPS        Y6, Y6
-	VMOVUPS        flight_eyex+0(AX), Y8
-	VMOVUPS        flight_eyey+0(AX), Y9
-	VMOVUPS        flight_eyez+0(AX), Y10
-	VMULPS         group_dx+0(CX), Y8, Y8
-	VFMADD231PS    group_dy+0(CX), Y9, Y8
-	VFMADD231PS    group_dz+0(CX), Y10, Y8
-	VMULPS         Y5, Y8, Y8
-	VMULPS         Y5, Y1, Y9
-	VSUBPS         Y9, Y6, Y6
-	VFMADD231PS    Y0, Y6, Y8
-	VMOVUPS        Y8, group_up+0(CX)
-	VMOVUPS        group_s+0(CX), Y0
-	VANDPS         group_arrived+0(CX), Y0, Y0
-	VADDPS         Y1, Y1, Y6
-	VANDPS         group_arrived+0(CX), Y6, Y6
-	VMOVUPS        group_x+0(CX), Y8
-	VMOVUPS        group_dx+0(CX), Y9
-	VFMADD231PS    Y9, Y0, Y8
-	VFNMADD231PS   Y2, Y6, Y9
-	VMOVUPS        Y8, group_x+0(CX)
-	VMOVUPS        Y9, group_dx+0(CX)
-	VMULPS         Y8, Y8, Y2
-	VMULPS         Y9, Y8, Y8
-	VMOVUPS        group_y+0(CX), Y9
-	VMOVUPS        group_dy+0(CX), Y10
-	VFMADD231PS    Y10, Y0, Y9
-	VFNMADD231PS   Y3, Y6, Y10
-	VMOVUPS        Y9, group_y+0(CX)
-	VMOVUPS        Y10, group_dy+0(CX)
-	VFMADD231PS    Y9, Y9, Y2
-	VFMADD231PS    Y10, Y9, Y8
-	VMOVUPS        group_z+0(CX), Y3
-	VMOVUPS        group_dz+0(CX), Y9
-	VFMADD231PS    Y9, Y0, Y3
-	VFNMADD231PS   Y4, Y6, Y9
-	VMOVUPS        Y3, group_z+0(CX)
-	VMOVUPS        Y9, group_dz+0(CX)
+	VMOVUPS        Y7, group_g2+0(DX)
+	VMOVUPS        flight_eyex+0(CX), Y6
+	VMOVUPS        flight_eyey+0(CX), Y8
+	VMOVUPS        flight_eyez+0(CX), Y9
+	VMULPS         group_dx+0(DX), Y6, Y6
+	VFMADD231PS    group_dy+0(DX), Y8, Y6
+	VFMADD231PS    group_dz+0(DX), Y9, Y6
+	VMULPS         Y5, Y6, Y6
+	VANDPS         magnitude<>+0(SB), Y7, Y7
+	VSQRTPS        Y7, Y7
+	VMULPS         Y5, Y1, Y5
+	VSUBPS         Y5, Y7, Y5
+	VFMADD231PS    Y0, Y5, Y6
+	VMOVUPS        Y6, group_up+0(DX)
+	VMOVUPS        group_s+0(DX), Y0
+	VANDPS         group_arrived+0(DX), Y0, Y0
+	VADDPS         Y1, Y1, Y1
+	VANDPS         group_arrived+0(DX), Y1, Y1
+	VMOVUPS        group_x+0(DX), Y5
+	VMOVUPS        group_dx+0(DX), Y6
+	VFMADD231PS    Y6, Y0, Y5
+	VFNMADD231PS   Y2, Y1, Y6
+	VMOVUPS        Y5, group_x+0(DX)
+	VMOVUPS        Y6, group_dx+0(DX)
+	VMULPS         Y5, Y5, Y2
+	VMULPS         Y6, Y5, Y5
+	VMOVUPS        group_y+0(DX), Y6
+	VMOVUPS        group_dy+0(DX), Y7
+	VFMADD231PS    Y7, Y0, Y6
+	VFNMADD231PS   Y3, Y1, Y7
+	VMOVUPS        Y6, group_y+0(DX)
+	VMOVUPS        Y7, group_dy+0(DX)
+	VFMADD231PS    Y6, Y6, Y2
+	VFMADD231PS    Y7, Y6, Y5
+	VMOVUPS        group_z+0(DX), Y3
+	VMOVUPS        group_dz+0(DX), Y6
+	VFMADD231PS    Y6, Y0, Y3
+	VFNMADD231PS   Y4, Y1, Y6
+	VMOVUPS        Y3, group_z+0(DX)
+	VMOVUPS        Y6, group_dz+0(DX)
 	VFMADD231PS    Y3, Y3, Y2
-	VFMADD231PS    Y9, Y3, Y8
+	VFMADD231PS    Y6, Y3, Y5
 	VMOVUPS        f3f804192<>+0(SB), Y0
 	VSUBPS         Y2, Y0, Y0
-	VFMADD231PS    Y8, Y8, Y0
+	VFMADD231PS    Y5, Y5, Y0
 	VMAXPS         f00000000<>+0(SB), Y0, Y0
 	VSQRTPS        Y0, Y0
-	VSUBPS         Y8, Y0, Y0
-	VMOVUPS        group_arrived+0(CX), Y2
-	VMOVUPS        group_s+0(CX), Y3
-	VBLENDVPS      Y2, Y0, Y3, Y0
-	VMOVUPS        Y0, group_s+0(CX)
-	VMOVUPS        group_i+0(CX), Y0
-	VMAXPS         f00000000<>+0(SB), Y7, Y2
-	VSQRTPS        Y2, Y2
-	VMULPS         Y5, Y1, Y3
-	VMULPS         Y5, Y2, Y4
-	VSUBPS         Y2, Y3, Y5
-	VADDPS         Y2, Y3, Y2
-	VDIVPS         Y2, Y5, Y2
-	VSUBPS         Y4, Y1, Y3
-	VADDPS         Y4, Y1, Y1
-	VDIVPS         Y1, Y3, Y1
-	VMULPS         Y2, Y2, Y2
-	VFMADD231PS    Y1, Y1, Y2
-	VMULPS         f3f000000<>+0(SB), Y2, Y1
-	VMULPS         Y1, Y0, Y1
-	VSUBPS         Y1, Y0, Y1
-	VCMPPS         $0x11, flight_faint+0(AX), Y0, Y2
-	VCMPPS         $0x1e, f00000000<>+0(SB), Y1, Y3
-	VANDPS         Y3, Y2, Y2
-	VANDPS         group_arrived+0(CX), Y2, Y2
-	VMOVUPS        group_die+0(CX), Y3
-	VPAND          dieStep<>+0(SB), Y2, Y4
-	VPADDD         Y4, Y3, Y3
-	VMOVUPS        Y3, group_die+0(CX)
-	VPSRLD         $0x10, Y3, Y4
-	VPXOR          Y4, Y3, Y3
-	VPMULLD        dieHash1<>+0(SB), Y3, Y3
-	VPSRLD         $0x0f, Y3, Y4
-	VPXOR          Y4, Y3, Y3
-	VPMULLD        dieHash2<>+0(SB), Y3, Y3
-	VPSRLD         $0x0f, Y3, Y4
-	VPXOR          Y4, Y3, Y3
-	VPSRLD         $0x08, Y3, Y3
-	VCVTDQ2PS      Y3, Y3
-	VMULPS         f33800000<>+0(SB), Y3, Y3
-	VMULPS         Y0, Y3, Y3
-	VCMPPS         $0x11, Y1, Y3, Y3
-	VANDPS         Y0, Y3, Y3
-	VBLENDVPS      Y2, Y3, Y1, Y1
-	VANDPS         group_arrived+0(CX), Y1, Y1
-	VMOVUPS        Y1, group_through+0(CX)
-	VSUBPS         Y1, Y0, Y0
-	VMOVUPS        Y0, group_i+0(CX)
-	VMOVUPS        group_arrived+0(CX), Y0
-	VMOVUPS        group_bounces+0(CX), Y1
-	VPSUBD         Y0, Y1, Y1
-	VMOVUPS        Y1, group_bounces+0(CX)
-	VMOVUPS        group_i+0(CX), Y2
-	VCMPPS         $0x1a, flight_cut+0(AX), Y2, Y2
-	VPCMPGTD       flight_most+0(AX), Y1, Y1
-	VORPS          Y1, Y2, Y1
-	VANDPS         Y0, Y1, Y0
-	VMOVMSKPS      Y0, BX
-	MOVL           BX, group_over+0(CX)
-	LEAQ           group__size+0(CX), CX
-	DECQ           DX
+	VSUBPS         Y5, Y0, Y0
+	VMOVUPS        group_arrived+0(DX), Y1
+	VMOVUPS        group_s+0(DX), Y2
+	VBLENDVPS      Y1, Y0, Y2, Y0
+	VMOVUPS        Y0, group_s+0(DX)
+	LEAQ           group__size+0(DX), DX
+	DECQ           BX
 	JNE            next
 	VZEROUPPER
 	RET
@@ -590,6 +479,238 @@ DATA f3f804192<>+20(SB)/4, $0x3f804192
 DATA f3f804192<>+24(SB)/4, $0x3f804192
 DATA f3f804192<>+28(SB)/4, $0x3f804192
 GLOBL f3f804192<>(SB), RODATA|NOPTR, $32
+
+// func mirrorPolarised(t uintptr, f uintptr)
+// Requires: AVX, FMA3
+TEXT ·mirrorPolarised(SB), NOSPLIT, $0-16
+	// Move the rays that have arrived to their exit, and mirror them there.
+	MOVQ t+0(FP), AX
+	MOVQ f+8(FP), CX
+	LEAQ flight_groups+0(CX), DX
+	MOVQ tables_busy+0(AX), BX
+
+next:
+	MOVQ           tables_normals+0(AX), SI
+	MOVL           group_facet+0(DX), DI
+	VBROADCASTF128 (SI)(DI*8), Y0
+	MOVL           group_facet+16(DX), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y0, Y0
+	MOVL           group_facet+4(DX), DI
+	VBROADCASTF128 (SI)(DI*8), Y1
+	MOVL           group_facet+20(DX), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y1, Y1
+	MOVL           group_facet+8(DX), DI
+	VBROADCASTF128 (SI)(DI*8), Y2
+	MOVL           group_facet+24(DX), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y2, Y2
+	MOVL           group_facet+12(DX), DI
+	VBROADCASTF128 (SI)(DI*8), Y3
+	MOVL           group_facet+28(DX), DI
+	VINSERTF128    $0x01, (SI)(DI*8), Y3, Y3
+	VUNPCKLPS      Y1, Y0, Y4
+	VUNPCKLPS      Y3, Y2, Y5
+	VUNPCKHPS      Y1, Y0, Y0
+	VUNPCKHPS      Y3, Y2, Y1
+	VUNPCKLPD      Y5, Y4, Y2
+	VUNPCKHPD      Y5, Y4, Y3
+	VUNPCKLPD      Y1, Y0, Y4
+	VUNPCKHPD      Y1, Y0, Y0
+	VMULPS         group_dx+0(DX), Y2, Y1
+	VFMADD231PS    group_dy+0(DX), Y3, Y1
+	VFMADD231PS    group_dz+0(DX), Y4, Y1
+	VMAXPS         f358637bd<>+0(SB), Y1, Y1
+	VMOVUPS        Y1, group_c+0(DX)
+	VMOVUPS        group_eta+0(DX), Y5
+	VMULPS         Y5, Y5, Y6
+	VMOVUPS        f3f800000<>+0(SB), Y7
+	VSUBPS         Y6, Y7, Y7
+	VMULPS         Y1, Y1, Y8
+	VFMADD231PS    Y6, Y8, Y7
+	VMOVUPS        Y7, group_g2+0(DX)
+	VMOVUPS        flight_eyex+0(CX), Y6
+	VMOVUPS        flight_eyey+0(CX), Y8
+	VMOVUPS        flight_eyez+0(CX), Y9
+	VMULPS         group_dx+0(DX), Y6, Y6
+	VFMADD231PS    group_dy+0(DX), Y8, Y6
+	VFMADD231PS    group_dz+0(DX), Y9, Y6
+	VMULPS         Y5, Y6, Y6
+	VANDPS         magnitude<>+0(SB), Y7, Y7
+	VSQRTPS        Y7, Y7
+	VMULPS         Y5, Y1, Y5
+	VSUBPS         Y5, Y7, Y5
+	VFMADD231PS    Y0, Y5, Y6
+	VMOVUPS        Y6, group_up+0(DX)
+	VMOVUPS        group_ax+0(DX), Y0
+	VMOVUPS        group_ay+0(DX), Y5
+	VMOVUPS        group_az+0(DX), Y6
+	VMULPS         Y0, Y2, Y7
+	VFMADD231PS    Y5, Y3, Y7
+	VFMADD231PS    Y6, Y4, Y7
+	VMULPS         group_dy+0(DX), Y6, Y8
+	VFNMADD231PS   group_dz+0(DX), Y5, Y8
+	VMULPS         group_dz+0(DX), Y0, Y9
+	VFNMADD231PS   group_dx+0(DX), Y6, Y9
+	VMULPS         group_dx+0(DX), Y5, Y10
+	VFNMADD231PS   group_dy+0(DX), Y0, Y10
+	VMULPS         Y8, Y2, Y8
+	VFMADD231PS    Y9, Y3, Y8
+	VFMADD231PS    Y10, Y4, Y8
+	VADDPS         Y7, Y7, Y9
+	VANDPS         group_arrived+0(DX), Y9, Y9
+	VFNMADD231PS   Y2, Y9, Y0
+	VMOVUPS        Y0, group_ax+0(DX)
+	VFNMADD231PS   Y3, Y9, Y5
+	VMOVUPS        Y5, group_ay+0(DX)
+	VFNMADD231PS   Y4, Y9, Y6
+	VMOVUPS        Y6, group_az+0(DX)
+	VMULPS         Y8, Y8, Y0
+	VMULPS         Y8, Y7, Y5
+	VADDPS         f0da24260<>+0(SB), Y0, Y6
+	VFMADD231PS    Y7, Y7, Y6
+	VADDPS         f0da24260<>+0(SB), Y0, Y0
+	VFNMADD231PS   Y7, Y7, Y0
+	VMOVUPS        f3f800000<>+0(SB), Y7
+	VDIVPS         Y6, Y7, Y6
+	VMULPS         Y6, Y0, Y0
+	VMOVUPS        Y0, group_cos2+0(DX)
+	VMULPS         fc0000000<>+0(SB), Y5, Y0
+	VMULPS         Y6, Y0, Y0
+	VMOVUPS        Y0, group_sin2+0(DX)
+	VMOVUPS        group_s+0(DX), Y0
+	VANDPS         group_arrived+0(DX), Y0, Y0
+	VADDPS         Y1, Y1, Y1
+	VANDPS         group_arrived+0(DX), Y1, Y1
+	VMOVUPS        group_x+0(DX), Y5
+	VMOVUPS        group_dx+0(DX), Y6
+	VFMADD231PS    Y6, Y0, Y5
+	VFNMADD231PS   Y2, Y1, Y6
+	VMOVUPS        Y5, group_x+0(DX)
+	VMOVUPS        Y6, group_dx+0(DX)
+	VMULPS         Y5, Y5, Y2
+	VMULPS         Y6, Y5, Y5
+	VMOVUPS        group_y+0(DX), Y6
+	VMOVUPS        group_dy+0(DX), Y7
+	VFMADD231PS    Y7, Y0, Y6
+	VFNMADD231PS   Y3, Y1, Y7
+	VMOVUPS        Y6, group_y+0(DX)
+	VMOVUPS        Y7, group_dy+0(DX)
+	VFMADD231PS    Y6, Y6, Y2
+	VFMADD231PS    Y7, Y6, Y5
+	VMOVUPS        group_z+0(DX), Y3
+	VMOVUPS        group_dz+0(DX), Y6
+	VFMADD231PS    Y6, Y0, Y3
+	VFNMADD231PS   Y4, Y1, Y6
+	VMOVUPS        Y3, group_z+0(DX)
+	VMOVUPS        Y6, group_dz+0(DX)
+	VFMADD231PS    Y3, Y3, Y2
+	VFMADD231PS    Y6, Y3, Y5
+	VMOVUPS        f3f804192<>+0(SB), Y0
+	VSUBPS         Y2, Y0, Y0
+	VFMADD231PS    Y5, Y5, Y0
+	VMAXPS         f00000000<>+0(SB), Y0, Y0
+	VSQRTPS        Y0, Y0
+	VSUBPS         Y5, Y0, Y0
+	VMOVUPS        group_arrived+0(DX), Y1
+	VMOVUPS        group_s+0(DX), Y2
+	VBLENDVPS      Y1, Y0, Y2, Y0
+	VMOVUPS        Y0, group_s+0(DX)
+	LEAQ           group__size+0(DX), DX
+	DECQ           BX
+	JNE            next
+	VZEROUPPER
+	RET
+
+DATA f0da24260<>+0(SB)/4, $0x0da24260
+DATA f0da24260<>+4(SB)/4, $0x0da24260
+DATA f0da24260<>+8(SB)/4, $0x0da24260
+DATA f0da24260<>+12(SB)/4, $0x0da24260
+DATA f0da24260<>+16(SB)/4, $0x0da24260
+DATA f0da24260<>+20(SB)/4, $0x0da24260
+DATA f0da24260<>+24(SB)/4, $0x0da24260
+DATA f0da24260<>+28(SB)/4, $0x0da24260
+GLOBL f0da24260<>(SB), RODATA|NOPTR, $32
+
+DATA fc0000000<>+0(SB)/4, $0xc0000000
+DATA fc0000000<>+4(SB)/4, $0xc0000000
+DATA fc0000000<>+8(SB)/4, $0xc0000000
+DATA fc0000000<>+12(SB)/4, $0xc0000000
+DATA fc0000000<>+16(SB)/4, $0xc0000000
+DATA fc0000000<>+20(SB)/4, $0xc0000000
+DATA fc0000000<>+24(SB)/4, $0xc0000000
+DATA fc0000000<>+28(SB)/4, $0xc0000000
+GLOBL fc0000000<>(SB), RODATA|NOPTR, $32
+
+// func splitAveraged(t uintptr, f uintptr)
+// Requires: AVX, AVX2, FMA3
+TEXT ·splitAveraged(SB), NOSPLIT, $0-16
+	// Split the light of the rays that have arrived, polarisations averaged.
+	MOVQ t+0(FP), AX
+	MOVQ f+8(FP), CX
+	LEAQ flight_groups+0(CX), DX
+	MOVQ tables_busy+0(AX), AX
+
+next:
+	VMOVUPS     group_g2+0(DX), Y0
+	VMAXPS      f00000000<>+0(SB), Y0, Y0
+	VSQRTPS     Y0, Y0
+	VMOVUPS     group_c+0(DX), Y1
+	VMULPS      group_eta+0(DX), Y1, Y2
+	VMULPS      group_eta+0(DX), Y0, Y3
+	VSUBPS      Y0, Y2, Y4
+	VADDPS      Y0, Y2, Y0
+	VDIVPS      Y0, Y4, Y0
+	VSUBPS      Y3, Y1, Y2
+	VADDPS      Y3, Y1, Y1
+	VDIVPS      Y1, Y2, Y1
+	VMULPS      Y0, Y0, Y0
+	VFMADD231PS Y1, Y1, Y0
+	VMOVUPS     group_i+0(DX), Y1
+	VMULPS      f3f000000<>+0(SB), Y0, Y0
+	VMULPS      Y0, Y1, Y0
+	VSUBPS      Y0, Y1, Y0
+	VCMPPS      $0x11, flight_faint+0(CX), Y1, Y2
+	VCMPPS      $0x1e, f00000000<>+0(SB), Y0, Y3
+	VANDPS      Y3, Y2, Y2
+	VANDPS      group_arrived+0(DX), Y2, Y2
+	VMOVUPS     group_die+0(DX), Y3
+	VPAND       dieStep<>+0(SB), Y2, Y4
+	VPADDD      Y4, Y3, Y3
+	VMOVUPS     Y3, group_die+0(DX)
+	VPSRLD      $0x10, Y3, Y4
+	VPXOR       Y4, Y3, Y3
+	VPMULLD     dieHash1<>+0(SB), Y3, Y3
+	VPSRLD      $0x0f, Y3, Y4
+	VPXOR       Y4, Y3, Y3
+	VPMULLD     dieHash2<>+0(SB), Y3, Y3
+	VPSRLD      $0x0f, Y3, Y4
+	VPXOR       Y4, Y3, Y3
+	VPSRLD      $0x08, Y3, Y3
+	VCVTDQ2PS   Y3, Y3
+	VMULPS      f33800000<>+0(SB), Y3, Y3
+	VMULPS      Y1, Y3, Y3
+	VCMPPS      $0x11, Y0, Y3, Y3
+	VANDPS      Y1, Y3, Y3
+	VBLENDVPS   Y2, Y3, Y0, Y0
+	VANDPS      group_arrived+0(DX), Y0, Y0
+	VSUBPS      Y0, Y1, Y1
+	VMOVUPS     Y0, group_through+0(DX)
+	VMOVUPS     Y1, group_i+0(DX)
+	VMOVUPS     group_arrived+0(DX), Y0
+	VMOVUPS     group_bounces+0(DX), Y1
+	VPSUBD      Y0, Y1, Y1
+	VMOVUPS     Y1, group_bounces+0(DX)
+	VMOVUPS     group_i+0(DX), Y2
+	VCMPPS      $0x1a, flight_cut+0(CX), Y2, Y2
+	VPCMPGTD    flight_most+0(CX), Y1, Y1
+	VORPS       Y1, Y2, Y1
+	VANDPS      Y0, Y1, Y0
+	VMOVMSKPS   Y0, BX
+	MOVL        BX, group_over+0(DX)
+	LEAQ        group__size+0(DX), DX
+	DECQ        AX
+	JNE         next
+	VZEROUPPER
+	RET
 
 DATA f3f000000<>+0(SB)/4, $0x3f000000
 DATA f3f000000<>+4(SB)/4, $0x3f000000
@@ -641,309 +762,178 @@ DATA f33800000<>+24(SB)/4, $0x33800000
 DATA f33800000<>+28(SB)/4, $0x33800000
 GLOBL f33800000<>(SB), RODATA|NOPTR, $32
 
-// func surfacePolarised(f uintptr)
+// func splitPolarised(t uintptr, f uintptr)
 // Requires: AVX, AVX2, FMA3
-TEXT ·surfacePolarised(SB), NOSPLIT, $0-8
-	// Split the light of the rays that have arrived and mirror what stays.
-	MOVQ f+0(FP), AX
-	LEAQ flight_groups+0(AX), CX
-	MOVQ flight_busy+0(AX), DX
+TEXT ·splitPolarised(SB), NOSPLIT, $0-16
+	// Split the light of the rays that have arrived.
+	MOVQ t+0(FP), AX
+	MOVQ f+8(FP), CX
+	LEAQ flight_groups+0(CX), DX
+	MOVQ tables_busy+0(AX), AX
 
 next:
-	MOVQ           flight_normals+0(AX), BX
-	MOVL           group_facet+0(CX), SI
-	VBROADCASTF128 (BX)(SI*8), Y0
-	MOVL           group_facet+16(CX), SI
-	VINSERTF128    $0x01, (BX)(SI*8), Y0, Y0
-	MOVL           group_facet+4(CX), SI
-	VBROADCASTF128 (BX)(SI*8), Y1
-	MOVL           group_facet+20(CX), SI
-	VINSERTF128    $0x01, (BX)(SI*8), Y1, Y1
-	MOVL           group_facet+8(CX), SI
-	VBROADCASTF128 (BX)(SI*8), Y2
-	MOVL           group_facet+24(CX), SI
-	VINSERTF128    $0x01, (BX)(SI*8), Y2, Y2
-	MOVL           group_facet+12(CX), SI
-	VBROADCASTF128 (BX)(SI*8), Y3
-	MOVL           group_facet+28(CX), SI
-	VINSERTF128    $0x01, (BX)(SI*8), Y3, Y3
-	VUNPCKLPS      Y1, Y0, Y4
-	VUNPCKLPS      Y3, Y2, Y5
-	VUNPCKHPS      Y1, Y0, Y0
-	VUNPCKHPS      Y3, Y2, Y1
-	VUNPCKLPD      Y5, Y4, Y2
-	VUNPCKHPD      Y5, Y4, Y3
-	VUNPCKLPD      Y1, Y0, Y4
-	VUNPCKHPD      Y1, Y0, Y0
-	VMULPS         group_dx+0(CX), Y2, Y1
-	VFMADD231PS    group_dy+0(CX), Y3, Y1
-	VFMADD231PS    group_dz+0(CX), Y4, Y1
-	VMAXPS         f358637bd<>+0(SB), Y1, Y1
-	VMOVUPS        group_eta+0(CX), Y5
-	VMULPS         Y5, Y5, Y6
-	VMOVUPS        f3f800000<>+0(SB), Y7
-	VSUBPS         Y6, Y7, Y7
-	VMULPS         Y1, Y1, Y8
-	VFMADD231PS    Y6, Y8, Y7
-	VANDPS         magnitude<>+0(SB), Y7, Y6
-	VSQRTPS        Y6, Y6
-	VMOVUPS        flight_eyex+0(AX), Y8
-	VMOVUPS        flight_eyey+0(AX), Y9
-	VMOVUPS        flight_eyez+0(AX), Y10
-	VMULPS         group_dx+0(CX), Y8, Y8
-	VFMADD231PS    group_dy+0(CX), Y9, Y8
-	VFMADD231PS    group_dz+0(CX), Y10, Y8
-	VMULPS         Y5, Y8, Y8
-	VMULPS         Y5, Y1, Y9
-	VSUBPS         Y9, Y6, Y9
-	VFMADD231PS    Y0, Y9, Y8
-	VMOVUPS        Y8, group_up+0(CX)
-	VMOVUPS        group_ax+0(CX), Y0
-	VMOVUPS        group_ay+0(CX), Y8
-	VMOVUPS        group_az+0(CX), Y9
-	VMULPS         Y0, Y2, Y10
-	VFMADD231PS    Y8, Y3, Y10
-	VFMADD231PS    Y9, Y4, Y10
-	VMULPS         group_dy+0(CX), Y9, Y11
-	VFNMADD231PS   group_dz+0(CX), Y8, Y11
-	VMULPS         group_dz+0(CX), Y0, Y12
-	VFNMADD231PS   group_dx+0(CX), Y9, Y12
-	VMULPS         group_dx+0(CX), Y8, Y13
-	VFNMADD231PS   group_dy+0(CX), Y0, Y13
-	VMULPS         Y11, Y2, Y11
-	VFMADD231PS    Y12, Y3, Y11
-	VFMADD231PS    Y13, Y4, Y11
-	VADDPS         Y10, Y10, Y12
-	VANDPS         group_arrived+0(CX), Y12, Y12
-	VFNMADD231PS   Y2, Y12, Y0
-	VMOVUPS        Y0, group_ax+0(CX)
-	VFNMADD231PS   Y3, Y12, Y8
-	VMOVUPS        Y8, group_ay+0(CX)
-	VFNMADD231PS   Y4, Y12, Y9
-	VMOVUPS        Y9, group_az+0(CX)
-	VMULPS         Y11, Y11, Y0
-	VMULPS         Y11, Y10, Y8
-	VADDPS         f0da24260<>+0(SB), Y0, Y9
-	VFMADD231PS    Y10, Y10, Y9
-	VADDPS         f0da24260<>+0(SB), Y0, Y0
-	VFNMADD231PS   Y10, Y10, Y0
-	VMULPS         fc0000000<>+0(SB), Y8, Y8
-	VMOVUPS        f3f800000<>+0(SB), Y10
-	VDIVPS         Y9, Y10, Y9
-	VMULPS         Y9, Y0, Y0
-	VMULPS         Y9, Y8, Y8
-	VMOVUPS        group_q+0(CX), Y9
-	VMOVUPS        group_u+0(CX), Y10
-	VMULPS         Y0, Y9, Y11
-	VMULPS         Y0, Y10, Y12
-	VFMADD231PS    Y8, Y10, Y11
-	VFNMADD231PS   Y8, Y9, Y12
-	VMOVUPS        group_s+0(CX), Y9
-	VANDPS         group_arrived+0(CX), Y9, Y9
-	VADDPS         Y1, Y1, Y10
-	VANDPS         group_arrived+0(CX), Y10, Y10
-	VMOVUPS        group_x+0(CX), Y13
-	VMOVUPS        group_dx+0(CX), Y14
-	VFMADD231PS    Y14, Y9, Y13
-	VFNMADD231PS   Y2, Y10, Y14
-	VMOVUPS        Y13, group_x+0(CX)
-	VMOVUPS        Y14, group_dx+0(CX)
-	VMULPS         Y13, Y13, Y2
-	VMULPS         Y14, Y13, Y13
-	VMOVUPS        group_y+0(CX), Y14
-	VMOVUPS        group_dy+0(CX), Y15
-	VFMADD231PS    Y15, Y9, Y14
-	VFNMADD231PS   Y3, Y10, Y15
-	VMOVUPS        Y14, group_y+0(CX)
-	VMOVUPS        Y15, group_dy+0(CX)
-	VFMADD231PS    Y14, Y14, Y2
-	VFMADD231PS    Y15, Y14, Y13
-	VMOVUPS        group_z+0(CX), Y3
-	VMOVUPS        group_dz+0(CX), Y14
-	VFMADD231PS    Y14, Y9, Y3
-	VFNMADD231PS   Y4, Y10, Y14
-	VMOVUPS        Y3, group_z+0(CX)
-	VMOVUPS        Y14, group_dz+0(CX)
-	VFMADD231PS    Y3, Y3, Y2
-	VFMADD231PS    Y14, Y3, Y13
-	VMOVUPS        f3f804192<>+0(SB), Y3
-	VSUBPS         Y2, Y3, Y2
-	VFMADD231PS    Y13, Y13, Y2
-	VMAXPS         f00000000<>+0(SB), Y2, Y2
-	VSQRTPS        Y2, Y2
-	VSUBPS         Y13, Y2, Y2
-	VMOVUPS        group_arrived+0(CX), Y3
-	VMOVUPS        group_s+0(CX), Y4
-	VBLENDVPS      Y3, Y2, Y4, Y2
-	VMOVUPS        Y2, group_s+0(CX)
-	VMOVUPS        group_i+0(CX), Y2
-	VMULPS         Y5, Y1, Y3
-	VMULPS         Y5, Y6, Y4
-	VSUBPS         Y6, Y3, Y9
-	VADDPS         Y6, Y3, Y3
-	VDIVPS         Y3, Y9, Y3
-	VSUBPS         Y4, Y1, Y9
-	VADDPS         Y4, Y1, Y4
-	VDIVPS         Y4, Y9, Y4
-	VBLENDVPS      Y7, f3f800000<>+0(SB), Y3, Y3
-	VBLENDVPS      Y7, f3f800000<>+0(SB), Y4, Y4
-	VMULPS         Y4, Y3, Y9
-	VMULPS         Y1, Y1, Y10
-	VMOVUPS        f3f800000<>+0(SB), Y13
-	VSUBPS         Y10, Y13, Y10
-	VMULPS         Y5, Y10, Y5
-	VMULPS         Y6, Y1, Y1
-	VMULPS         Y5, Y5, Y6
-	VMULPS         Y1, Y1, Y10
-	VMOVUPS        f3f800000<>+0(SB), Y13
-	VADDPS         Y10, Y6, Y14
-	VDIVPS         Y14, Y13, Y13
-	VSUBPS         Y10, Y6, Y6
-	VMULPS         Y13, Y6, Y6
-	VBLENDVPS      Y7, Y6, Y9, Y6
-	VMULPS         Y1, Y5, Y1
-	VMULPS         Y13, Y1, Y1
-	VADDPS         Y1, Y1, Y1
-	VMOVUPS        f00000000<>+0(SB), Y5
-	VBLENDVPS      Y7, Y1, Y5, Y1
-	VMULPS         Y3, Y3, Y3
-	VMULPS         f3f000000<>+0(SB), Y3, Y3
-	VMULPS         Y4, Y4, Y4
-	VMULPS         f3f000000<>+0(SB), Y4, Y4
-	VADDPS         Y4, Y3, Y5
-	VSUBPS         Y4, Y3, Y3
-	VMULPS         Y2, Y5, Y4
-	VFMADD231PS    Y11, Y3, Y4
-	VMULPS         Y5, Y11, Y5
-	VFMADD231PS    Y2, Y3, Y5
-	VMOVUPS        group_v+0(CX), Y3
-	VMULPS         Y6, Y3, Y7
-	VFMADD231PS    Y1, Y12, Y7
-	VMULPS         Y6, Y12, Y6
-	VFNMADD231PS   Y1, Y3, Y6
-	VMULPS         Y0, Y5, Y1
-	VMULPS         Y0, Y6, Y0
-	VFMADD231PS    Y8, Y6, Y1
-	VFNMADD231PS   Y8, Y5, Y0
-	VMOVUPS        group_arrived+0(CX), Y3
-	VMOVUPS        group_q+0(CX), Y5
-	VBLENDVPS      Y3, Y1, Y5, Y1
-	VMOVUPS        Y1, group_q+0(CX)
-	VMOVUPS        group_u+0(CX), Y1
-	VBLENDVPS      Y3, Y0, Y1, Y0
-	VMOVUPS        Y0, group_u+0(CX)
-	VMOVUPS        group_v+0(CX), Y0
-	VBLENDVPS      Y3, Y7, Y0, Y0
-	VMOVUPS        Y0, group_v+0(CX)
-	VSUBPS         Y4, Y2, Y0
-	VMAXPS         f00000000<>+0(SB), Y0, Y0
-	VCMPPS         $0x11, flight_faint+0(AX), Y2, Y1
-	VCMPPS         $0x1e, f00000000<>+0(SB), Y0, Y3
-	VANDPS         Y3, Y1, Y1
-	VANDPS         group_arrived+0(CX), Y1, Y1
-	VMOVUPS        group_die+0(CX), Y3
-	VPAND          dieStep<>+0(SB), Y1, Y5
-	VPADDD         Y5, Y3, Y3
-	VMOVUPS        Y3, group_die+0(CX)
-	VPSRLD         $0x10, Y3, Y5
-	VPXOR          Y5, Y3, Y3
-	VPMULLD        dieHash1<>+0(SB), Y3, Y3
-	VPSRLD         $0x0f, Y3, Y5
-	VPXOR          Y5, Y3, Y3
-	VPMULLD        dieHash2<>+0(SB), Y3, Y3
-	VPSRLD         $0x0f, Y3, Y5
-	VPXOR          Y5, Y3, Y3
-	VPSRLD         $0x08, Y3, Y3
-	VCVTDQ2PS      Y3, Y3
-	VMULPS         f33800000<>+0(SB), Y3, Y3
-	VMULPS         Y2, Y3, Y3
-	VCMPPS         $0x11, Y0, Y3, Y3
-	VANDPS         Y2, Y3, Y3
-	VBLENDVPS      Y1, Y3, Y0, Y0
-	VANDPS         group_arrived+0(CX), Y0, Y0
-	VSUBPS         Y0, Y2, Y2
-	VMOVUPS        Y0, group_through+0(CX)
-	VMOVUPS        Y2, group_i+0(CX)
-	VDIVPS         Y4, Y2, Y0
-	VMOVUPS        f3f800000<>+0(SB), Y2
-	VBLENDVPS      Y1, Y0, Y2, Y0
-	VMULPS         group_q+0(CX), Y0, Y1
-	VMOVUPS        Y1, group_q+0(CX)
-	VMULPS         group_u+0(CX), Y0, Y1
-	VMOVUPS        Y1, group_u+0(CX)
-	VMULPS         group_v+0(CX), Y0, Y0
-	VMOVUPS        Y0, group_v+0(CX)
-	VMOVUPS        group_arrived+0(CX), Y0
-	VMOVUPS        group_bounces+0(CX), Y1
-	VPSUBD         Y0, Y1, Y1
-	VMOVUPS        Y1, group_bounces+0(CX)
-	VMOVUPS        group_i+0(CX), Y2
-	VCMPPS         $0x1a, flight_cut+0(AX), Y2, Y2
-	VPCMPGTD       flight_most+0(AX), Y1, Y1
-	VORPS          Y1, Y2, Y1
-	VANDPS         Y0, Y1, Y0
-	VMOVMSKPS      Y0, BX
-	MOVL           BX, group_over+0(CX)
-	LEAQ           group__size+0(CX), CX
-	DECQ           DX
-	JNE            next
+	VMOVUPS      group_g2+0(DX), Y0
+	VANDPS       magnitude<>+0(SB), Y0, Y1
+	VSQRTPS      Y1, Y1
+	VMOVUPS      group_c+0(DX), Y2
+	VMULPS       group_eta+0(DX), Y2, Y3
+	VMULPS       group_eta+0(DX), Y1, Y4
+	VSUBPS       Y1, Y3, Y5
+	VADDPS       Y1, Y3, Y3
+	VDIVPS       Y3, Y5, Y3
+	VSUBPS       Y4, Y2, Y5
+	VADDPS       Y4, Y2, Y2
+	VDIVPS       Y2, Y5, Y2
+	VBLENDVPS    Y0, f3f800000<>+0(SB), Y3, Y3
+	VBLENDVPS    Y0, f3f800000<>+0(SB), Y2, Y2
+	VMULPS       Y2, Y3, Y4
+	VMOVUPS      group_c+0(DX), Y5
+	VMOVUPS      f3f800000<>+0(SB), Y6
+	VMULPS       Y5, Y5, Y7
+	VSUBPS       Y7, Y6, Y6
+	VMULPS       group_eta+0(DX), Y6, Y6
+	VMULPS       Y1, Y5, Y1
+	VMULPS       Y6, Y6, Y5
+	VMULPS       Y1, Y1, Y7
+	VMOVUPS      f3f800000<>+0(SB), Y8
+	VADDPS       Y7, Y5, Y9
+	VDIVPS       Y9, Y8, Y8
+	VSUBPS       Y7, Y5, Y5
+	VMULPS       Y8, Y5, Y5
+	VBLENDVPS    Y0, Y5, Y4, Y4
+	VMULPS       Y1, Y6, Y1
+	VMULPS       Y8, Y1, Y1
+	VADDPS       Y1, Y1, Y1
+	VMOVUPS      f00000000<>+0(SB), Y5
+	VBLENDVPS    Y0, Y1, Y5, Y0
+	VMOVUPS      group_cos2+0(DX), Y1
+	VMOVUPS      group_sin2+0(DX), Y5
+	VMOVUPS      group_q+0(DX), Y6
+	VMOVUPS      group_u+0(DX), Y7
+	VMULPS       Y1, Y6, Y8
+	VMULPS       Y1, Y7, Y9
+	VFMADD231PS  Y5, Y7, Y8
+	VFNMADD231PS Y5, Y6, Y9
+	VMOVUPS      group_i+0(DX), Y6
+	VMULPS       Y3, Y3, Y3
+	VMULPS       f3f000000<>+0(SB), Y3, Y3
+	VMULPS       Y2, Y2, Y2
+	VMULPS       f3f000000<>+0(SB), Y2, Y2
+	VADDPS       Y2, Y3, Y7
+	VSUBPS       Y2, Y3, Y2
+	VMULPS       Y6, Y7, Y3
+	VFMADD231PS  Y8, Y2, Y3
+	VMULPS       Y7, Y8, Y7
+	VFMADD231PS  Y6, Y2, Y7
+	VMOVUPS      group_v+0(DX), Y2
+	VMULPS       Y4, Y2, Y8
+	VFMADD231PS  Y0, Y9, Y8
+	VMULPS       Y4, Y9, Y4
+	VFNMADD231PS Y0, Y2, Y4
+	VMULPS       Y1, Y7, Y0
+	VMULPS       Y1, Y4, Y1
+	VFMADD231PS  Y5, Y4, Y0
+	VFNMADD231PS Y5, Y7, Y1
+	VMOVUPS      group_arrived+0(DX), Y2
+	VMOVUPS      group_q+0(DX), Y4
+	VBLENDVPS    Y2, Y0, Y4, Y0
+	VMOVUPS      Y0, group_q+0(DX)
+	VMOVUPS      group_u+0(DX), Y0
+	VBLENDVPS    Y2, Y1, Y0, Y0
+	VMOVUPS      Y0, group_u+0(DX)
+	VMOVUPS      group_v+0(DX), Y0
+	VBLENDVPS    Y2, Y8, Y0, Y0
+	VMOVUPS      Y0, group_v+0(DX)
+	VSUBPS       Y3, Y6, Y0
+	VMAXPS       f00000000<>+0(SB), Y0, Y0
+	VCMPPS       $0x11, flight_faint+0(CX), Y6, Y1
+	VCMPPS       $0x1e, f00000000<>+0(SB), Y0, Y2
+	VANDPS       Y2, Y1, Y1
+	VANDPS       group_arrived+0(DX), Y1, Y1
+	VMOVUPS      group_die+0(DX), Y2
+	VPAND        dieStep<>+0(SB), Y1, Y4
+	VPADDD       Y4, Y2, Y2
+	VMOVUPS      Y2, group_die+0(DX)
+	VPSRLD       $0x10, Y2, Y4
+	VPXOR        Y4, Y2, Y2
+	VPMULLD      dieHash1<>+0(SB), Y2, Y2
+	VPSRLD       $0x0f, Y2, Y4
+	VPXOR        Y4, Y2, Y2
+	VPMULLD      dieHash2<>+0(SB), Y2, Y2
+	VPSRLD       $0x0f, Y2, Y4
+	VPXOR        Y4, Y2, Y2
+	VPSRLD       $0x08, Y2, Y2
+	VCVTDQ2PS    Y2, Y2
+	VMULPS       f33800000<>+0(SB), Y2, Y2
+	VMULPS       Y6, Y2, Y2
+	VCMPPS       $0x11, Y0, Y2, Y2
+	VANDPS       Y6, Y2, Y2
+	VBLENDVPS    Y1, Y2, Y0, Y0
+	VANDPS       group_arrived+0(DX), Y0, Y0
+	VSUBPS       Y0, Y6, Y2
+	VMOVUPS      Y0, group_through+0(DX)
+	VMOVUPS      Y2, group_i+0(DX)
+	VDIVPS       Y3, Y2, Y0
+	VMOVUPS      f3f800000<>+0(SB), Y2
+	VBLENDVPS    Y1, Y0, Y2, Y0
+	VMULPS       group_q+0(DX), Y0, Y1
+	VMOVUPS      Y1, group_q+0(DX)
+	VMULPS       group_u+0(DX), Y0, Y1
+	VMOVUPS      Y1, group_u+0(DX)
+	VMULPS       group_v+0(DX), Y0, Y0
+	VMOVUPS      Y0, group_v+0(DX)
+	VMOVUPS      group_arrived+0(DX), Y0
+	VMOVUPS      group_bounces+0(DX), Y1
+	VPSUBD       Y0, Y1, Y1
+	VMOVUPS      Y1, group_bounces+0(DX)
+	VMOVUPS      group_i+0(DX), Y2
+	VCMPPS       $0x1a, flight_cut+0(CX), Y2, Y2
+	VPCMPGTD     flight_most+0(CX), Y1, Y1
+	VORPS        Y1, Y2, Y1
+	VANDPS       Y0, Y1, Y0
+	VMOVMSKPS    Y0, BX
+	MOVL         BX, group_over+0(DX)
+	LEAQ         group__size+0(DX), DX
+	DECQ         AX
+	JNE          next
 	VZEROUPPER
 	RET
 
-DATA f0da24260<>+0(SB)/4, $0x0da24260
-DATA f0da24260<>+4(SB)/4, $0x0da24260
-DATA f0da24260<>+8(SB)/4, $0x0da24260
-DATA f0da24260<>+12(SB)/4, $0x0da24260
-DATA f0da24260<>+16(SB)/4, $0x0da24260
-DATA f0da24260<>+20(SB)/4, $0x0da24260
-DATA f0da24260<>+24(SB)/4, $0x0da24260
-DATA f0da24260<>+28(SB)/4, $0x0da24260
-GLOBL f0da24260<>(SB), RODATA|NOPTR, $32
-
-DATA fc0000000<>+0(SB)/4, $0xc0000000
-DATA fc0000000<>+4(SB)/4, $0xc0000000
-DATA fc0000000<>+8(SB)/4, $0xc0000000
-DATA fc0000000<>+12(SB)/4, $0xc0000000
-DATA fc0000000<>+16(SB)/4, $0xc0000000
-DATA fc0000000<>+20(SB)/4, $0xc0000000
-DATA fc0000000<>+24(SB)/4, $0xc0000000
-DATA fc0000000<>+28(SB)/4, $0xc0000000
-GLOBL fc0000000<>(SB), RODATA|NOPTR, $32
-
-// func tally(f uintptr)
+// func tally(t uintptr, f uintptr)
 // Requires: AVX, AVX2, FMA3
-TEXT ·tally(SB), NOSPLIT, $0-8
+TEXT ·tally(SB), NOSPLIT, $0-16
 	// Put down where the light goes that has gone through.
-	MOVQ f+0(FP), AX
-	LEAQ flight_groups+0(AX), CX
-	MOVQ flight_busy+0(AX), DX
+	MOVQ t+0(FP), AX
+	MOVQ f+8(FP), CX
+	LEAQ flight_groups+0(CX), DX
+	MOVQ tables_busy+0(AX), BX
 
 next:
-	VMOVUPS      group_through+0(CX), Y0
-	VMOVUPS      group_up+0(CX), Y1
+	VMOVUPS      group_through+0(DX), Y0
+	VMOVUPS      group_up+0(DX), Y1
 	VCMPPS       $0x12, f00000000<>+0(SB), Y1, Y2
-	VCMPPS       $0x1e, flight_headCos+0(AX), Y1, Y3
+	VCMPPS       $0x1e, flight_headCos+0(CX), Y1, Y3
 	VANDPS       Y0, Y2, Y4
-	VADDPS       group_leaked+0(CX), Y4, Y4
-	VMOVUPS      Y4, group_leaked+0(CX)
+	VADDPS       group_leaked+0(DX), Y4, Y4
+	VMOVUPS      Y4, group_leaked+0(DX)
 	VANDPS       Y0, Y3, Y4
-	VADDPS       group_head+0(CX), Y4, Y4
-	VMOVUPS      Y4, group_head+0(CX)
+	VADDPS       group_head+0(DX), Y4, Y4
+	VMOVUPS      Y4, group_head+0(DX)
 	VORPS        Y3, Y2, Y3
 	VANDNPS      Y0, Y3, Y3
-	VADDPS       group_returned+0(CX), Y3, Y3
-	VMOVUPS      Y3, group_returned+0(CX)
-	VMOVUPS      flight_pavilion+0(AX), Y3
-	VPCMPGTD     group_facet+0(CX), Y3, Y3
-	VANDPS       group_arrived+0(CX), Y3, Y3
-	VANDPS       group_unmet+0(CX), Y3, Y3
+	VADDPS       group_returned+0(DX), Y3, Y3
+	VMOVUPS      Y3, group_returned+0(DX)
+	VMOVUPS      flight_pavilion+0(CX), Y3
+	VPCMPGTD     group_facet+0(DX), Y3, Y3
+	VANDPS       group_arrived+0(DX), Y3, Y3
+	VANDPS       group_unmet+0(DX), Y3, Y3
 	VANDPS       Y2, Y3, Y4
 	VCMPPS       $0x1e, f3f000000<>+0(SB), Y0, Y5
 	VANDPS       Y5, Y4, Y4
-	VORPS        group_windowed+0(CX), Y4, Y4
-	VMOVUPS      Y4, group_windowed+0(CX)
-	VANDNPS      group_unmet+0(CX), Y3, Y3
-	VMOVUPS      Y3, group_unmet+0(CX)
+	VORPS        group_windowed+0(DX), Y4, Y4
+	VMOVUPS      Y4, group_windowed+0(DX)
+	VANDNPS      group_unmet+0(DX), Y3, Y3
+	VMOVUPS      Y3, group_unmet+0(DX)
 	VANDNPS      Y0, Y2, Y0
 	VMAXPS       f00000000<>+0(SB), Y1, Y1
 	VMINPS       f3f800000<>+0(SB), Y1, Y1
@@ -970,49 +960,49 @@ next:
 	VCVTTPS2DQ   Y1, Y1
 	VPMINSD      lastBin<>+0(SB), Y1, Y1
 	VPSLLD       $0x03, Y1, Y1
-	VPADDD       group_bins+0(CX), Y1, Y1
-	VMOVUPS      Y1, group_cell+0(CX)
-	MOVQ         flight_bins+0(AX), BX
+	VPADDD       group_bins+0(DX), Y1, Y1
+	VMOVUPS      Y1, group_bin+0(DX)
+	MOVQ         tables_bins+0(AX), SI
 	VEXTRACTF128 $0x00, Y0, X1
 	VCVTPS2PD    X1, Y1
-	VMOVUPS      Y1, group_wide+0(CX)
+	VMOVUPS      Y1, group_wide+0(DX)
 	VEXTRACTF128 $0x01, Y0, X0
 	VCVTPS2PD    X0, Y1
-	VMOVUPS      Y1, group_wide+32(CX)
-	MOVL         group_cell+0(CX), SI
-	VMOVSD       (BX)(SI*1), X0
-	VADDSD       group_wide+0(CX), X0, X0
-	VMOVSD       X0, (BX)(SI*1)
-	MOVL         group_cell+4(CX), SI
-	VMOVSD       (BX)(SI*1), X0
-	VADDSD       group_wide+8(CX), X0, X0
-	VMOVSD       X0, (BX)(SI*1)
-	MOVL         group_cell+8(CX), SI
-	VMOVSD       (BX)(SI*1), X0
-	VADDSD       group_wide+16(CX), X0, X0
-	VMOVSD       X0, (BX)(SI*1)
-	MOVL         group_cell+12(CX), SI
-	VMOVSD       (BX)(SI*1), X0
-	VADDSD       group_wide+24(CX), X0, X0
-	VMOVSD       X0, (BX)(SI*1)
-	MOVL         group_cell+16(CX), SI
-	VMOVSD       (BX)(SI*1), X0
-	VADDSD       group_wide+32(CX), X0, X0
-	VMOVSD       X0, (BX)(SI*1)
-	MOVL         group_cell+20(CX), SI
-	VMOVSD       (BX)(SI*1), X0
-	VADDSD       group_wide+40(CX), X0, X0
-	VMOVSD       X0, (BX)(SI*1)
-	MOVL         group_cell+24(CX), SI
-	VMOVSD       (BX)(SI*1), X0
-	VADDSD       group_wide+48(CX), X0, X0
-	VMOVSD       X0, (BX)(SI*1)
-	MOVL         group_cell+28(CX), SI
-	VMOVSD       (BX)(SI*1), X0
-	VADDSD       group_wide+56(CX), X0, X0
-	VMOVSD       X0, (BX)(SI*1)
-	LEAQ         group__size+0(CX), CX
-	DECQ         DX
+	VMOVUPS      Y1, group_wide+32(DX)
+	MOVL         group_bin+0(DX), DI
+	VMOVSD       (SI)(DI*1), X0
+	VADDSD       group_wide+0(DX), X0, X0
+	VMOVSD       X0, (SI)(DI*1)
+	MOVL         group_bin+4(DX), DI
+	VMOVSD       (SI)(DI*1), X0
+	VADDSD       group_wide+8(DX), X0, X0
+	VMOVSD       X0, (SI)(DI*1)
+	MOVL         group_bin+8(DX), DI
+	VMOVSD       (SI)(DI*1), X0
+	VADDSD       group_wide+16(DX), X0, X0
+	VMOVSD       X0, (SI)(DI*1)
+	MOVL         group_bin+12(DX), DI
+	VMOVSD       (SI)(DI*1), X0
+	VADDSD       group_wide+24(DX), X0, X0
+	VMOVSD       X0, (SI)(DI*1)
+	MOVL         group_bin+16(DX), DI
+	VMOVSD       (SI)(DI*1), X0
+	VADDSD       group_wide+32(DX), X0, X0
+	VMOVSD       X0, (SI)(DI*1)
+	MOVL         group_bin+20(DX), DI
+	VMOVSD       (SI)(DI*1), X0
+	VADDSD       group_wide+40(DX), X0, X0
+	VMOVSD       X0, (SI)(DI*1)
+	MOVL         group_bin+24(DX), DI
+	VMOVSD       (SI)(DI*1), X0
+	VADDSD       group_wide+48(DX), X0, X0
+	VMOVSD       X0, (SI)(DI*1)
+	MOVL         group_bin+28(DX), DI
+	VMOVSD       (SI)(DI*1), X0
+	VADDSD       group_wide+56(DX), X0, X0
+	VMOVSD       X0, (SI)(DI*1)
+	LEAQ         group__size+0(DX), DX
+	DECQ         BX
 	JNE          next
 	VZEROUPPER
 	RET

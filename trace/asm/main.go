@@ -18,10 +18,13 @@ import (
 )
 
 func main() {
+	aim()
 	look()
 	settle()
-	surface("surfaceAveraged", false)
-	surface("surfacePolarised", true)
+	mirror("mirrorAveraged", false)
+	mirror("mirrorPolarised", true)
+	splitAveraged()
+	splitPolarised()
 	tally()
 	if err := write("../kernel_amd64.s"); err != nil {
 		log.Fatal(err)

@@ -4,57 +4,56 @@ import (
 	"math"
 
 	. "github.com/mmcloughlin/avo/operand"
-	"github.com/mmcloughlin/avo/reg"
 )
 
 // tally puts what goes through a surface down in the ledger of its ray, and in the
 // bins by angle from the eye.
 func tally() {
-	eachGroup("tally", "Put down where the light goes that has gone through.", func(flight, group reg.Register) {
-		through, up := load(field(group, "group_through")), load(field(group, "group_up"))
+	eachGroup("tally", "Put down where the light goes that has gone through.", func() {
+		through, up := load(ray("through")), load(ray("up"))
 		down := compare(up, atMost, zero())
-		toHead := compare(up, moreThan, field(flight, "flight_headCos"))
+		toHead := compare(up, moreThan, all("headCos"))
 
 		deposit := func(name string, share vector) {
-			store(add(share, field(group, name)), field(group, name))
+			store(add(share, ray(name)), ray(name))
 		}
-		deposit("group_leaked", and(down, through))
-		deposit("group_head", and(toHead, through))
-		deposit("group_returned", without(or(down, toHead), through))
+		deposit("leaked", and(down, through))
+		deposit("head", and(toHead, through))
+		deposit("returned", without(or(down, toHead), through))
 
 		// The first meeting with the pavilion decides whether one sees through.
-		meets := moreInt(load(field(flight, "flight_pavilion")), field(group, "group_facet"))
-		meets = and(meets, field(group, "group_arrived"))
-		meets = and(meets, field(group, "group_unmet"))
+		meets := moreInt(load(all("pavilion")), ray("facet"))
+		meets = and(meets, ray("arrived"))
+		meets = and(meets, ray("unmet"))
 		seen := and(and(meets, down), compare(through, moreThan, number(0.5)))
-		store(or(seen, field(group, "group_windowed")), field(group, "group_windowed"))
-		store(without(meets, field(group, "group_unmet")), field(group, "group_unmet"))
+		store(or(seen, ray("windowed")), ray("windowed"))
+		store(without(meets, ray("unmet")), ray("unmet"))
 
-		bin(flight, group, without(down, through), up)
+		bin(without(down, through), up)
 	})
 }
 
 // bin adds shares to the bins of 5 degrees of the angle from the eye. Each place in
 // a group and each medium has bins of its own, which the caller adds up.
-func bin(flight, group reg.Register, share, up vector) {
+func bin(share, up vector) {
 	angle := arcCosine(smaller(larger(up, zero()), one()))
 	k := truncate(mul(angle, number(18/(math.Pi/2))))
 	k = smallerInt(k, spread("lastBin", 17))
-	store(addInt(left(k, 3), field(group, "group_bins")), field(group, "group_cell"))
+	store(addInt(left(k, 3), ray("bins")), ray("bin"))
 
 	bins, at, sum := ctx.GP64(), ctx.GP64(), ctx.XMM()
-	ctx.MOVQ(field(flight, "flight_bins"), bins)
+	ctx.MOVQ(table("bins"), bins)
 	wide := ctx.YMM()
 	for half := range 2 {
 		four := ctx.XMM()
 		ctx.VEXTRACTF128(Imm(uint64(half)), share, four)
 		ctx.VCVTPS2PD(four, wide)
-		store(wide, field(group, "group_wide").Offset(32*half))
+		store(wide, ray("wide").Offset(32*half))
 	}
-	for ray := range 8 {
-		ctx.MOVL(field(group, "group_cell").Offset(4*ray), at.As32())
+	for i := range 8 {
+		ctx.MOVL(ray("bin").Offset(4*i), at.As32())
 		ctx.VMOVSD(Mem{Base: bins, Index: at, Scale: 1}, sum)
-		ctx.VADDSD(field(group, "group_wide").Offset(8*ray), sum, sum)
+		ctx.VADDSD(ray("wide").Offset(8*i), sum, sum)
 		ctx.VMOVSD(sum, Mem{Base: bins, Index: at, Scale: 1})
 	}
 }

@@ -19,8 +19,16 @@ type vector = reg.VecVirtual
 // triple is three vectors: a point or direction a ray. Its parts may be in memory.
 type triple struct{ x, y, z Op }
 
-// field is a place in a structure of package trace, by the name that go_asm.h
-// gives it.
+// here is where the pass that is being written stands: the registers that point to
+// the tables, the flight and the group it works on.
+var here struct{ tables, flight, group reg.Register }
+
+// ray, all and table are the fields of that name in the group, the flight and the
+// tables; go_asm.h has their places.
+func ray(name string) Mem   { return field(here.group, "group_"+name) }
+func all(name string) Mem   { return field(here.flight, "flight_"+name) }
+func table(name string) Mem { return field(here.tables, "tables_"+name) }
+
 func field(base reg.Register, name string) Mem {
 	return Mem{Symbol: Symbol{Name: name}, Base: base}
 }
@@ -153,15 +161,6 @@ func dot(a triple, b triple) vector {
 	return sum
 }
 
-// along is the point s along d from x, each part in a new register.
-func along(x triple, s vector, d triple) (p [3]vector) {
-	for i, from := range []Op{x.x, x.y, x.z} {
-		p[i] = load(from)
-		addProduct(p[i], s, []Op{d.x, d.y, d.z}[i])
-	}
-	return p
-}
-
 // in returns the operand as a register.
 func in(a Op) vector {
 	if v, ok := a.(vector); ok {
@@ -172,7 +171,7 @@ func in(a Op) vector {
 
 // rows loads a row of four numbers for each ray and turns the eight rows into four
 // vectors.
-func rows(row func(ray int) Mem) (a, b, c, d vector) {
+func rows(row func(i int) Mem) (a, b, c, d vector) {
 	var r [4]vector
 	for i := range r {
 		r[i] = ctx.YMM()
@@ -185,20 +184,21 @@ func rows(row func(ray int) Mem) (a, b, c, d vector) {
 		three(ctx.VUNPCKLPD, cd01, cd23), three(ctx.VUNPCKHPD, cd01, cd23)
 }
 
-// eachGroup writes a function that does body for each group of a flight. body is given
-// the registers that hold where the flight and the group are.
-func eachGroup(name, doc string, body func(flight, group reg.Register)) {
+// eachGroup writes a function that does body for each busy group of a flight.
+func eachGroup(name, doc string, body func()) {
 	ctx.Function(name)
 	ctx.Attributes(attr.NOSPLIT)
-	ctx.SignatureExpr("func(f uintptr)")
+	ctx.SignatureExpr("func(t, f uintptr)")
 	ctx.Comment(doc)
-	flight, group, left := ctx.GP64(), ctx.GP64(), ctx.GP64()
-	ctx.Load(ctx.Param("f"), flight)
-	ctx.LEAQ(field(flight, "flight_groups"), group)
-	ctx.MOVQ(field(flight, "flight_busy"), left)
+	here.tables, here.flight, here.group = ctx.GP64(), ctx.GP64(), ctx.GP64()
+	left := ctx.GP64()
+	ctx.Load(ctx.Param("t"), here.tables)
+	ctx.Load(ctx.Param("f"), here.flight)
+	ctx.LEAQ(all("groups"), here.group)
+	ctx.MOVQ(table("busy"), left)
 	ctx.Label("next")
-	body(flight, group)
-	ctx.LEAQ(field(group, "group__size"), group)
+	body()
+	ctx.LEAQ(ray("_size"), here.group)
 	ctx.DECQ(left)
 	ctx.JNE(LabelRef("next"))
 	// The caller's code may use the older vector instructions, which are slow while
