@@ -1,0 +1,69 @@
+package trace
+
+import (
+	"context"
+	"math"
+	"testing"
+
+	"pavilight/gems"
+)
+
+// TestAppearanceOfPlate knows how a plane-parallel plate looks: it mirrors and returns
+// its part of the even light everywhere alike.
+func TestAppearanceOfPlate(t *testing.T) {
+	s := solid(t, box(4, 4, 0.02))
+	scene := Scene{Stone: s, Material: plain(t, "stone", 1.5), Surroundings: Around(plain(t, "air", 1))}
+	light, err := FindLight("even")
+	if err != nil {
+		t.Fatal(err)
+	}
+	a65, err := FindIlluminant("D65")
+	if err != nil {
+		t.Fatal(err)
+	}
+	looks, err := Appear(context.Background(), scene, Settings{Light: light.Under(a65), Seed: 5}, 3000, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	a := looks[0]
+	const back = 1 - 2*1.5/(1.5*1.5+1)
+	within := func(what string, e Estimate, want float64) {
+		t.Helper()
+		if math.Abs(e.Value-want) > 4*e.Error+1e-3 {
+			t.Errorf("%s: %v, want %v", what, e, want)
+		}
+	}
+	within("luminance", a.Luminance, back)
+	within("dark area", a.DarkArea, 1) // 0.077 lies under a tenth
+	if a.Contrast.Value > 0.015 { // the rim, where orders are lost, is not quite alike
+		t.Errorf("contrast: %v, want almost none", a.Contrast)
+	}
+	within("fire", a.Fire, 0)
+	middle := a.XYZ[a.Pixels*a.Pixels/2+a.Pixels/2]
+	white := a65.White()
+	for c := range 3 {
+		near(t, "colour in the middle", float64(middle[c]), back*white[c]/white[1], 0.02, "white light stays white")
+	}
+}
+
+// TestColourModeKeepsTheLedger gathers the same shares with wavelengths drawn for colour.
+func TestColourModeKeepsTheLedger(t *testing.T) {
+	diamond, err := gems.Find("diamond")
+	if err != nil {
+		t.Fatal(err)
+	}
+	scene := lump(t)
+	scene.Material = diamond
+	plainly := mustRun(t, scene, Settings{Pixels: 8, Samples: 600, Seed: 1})
+	colour := mustRun(t, scene, Settings{Pixels: 8, Samples: 600, Seed: 2, Colour: true})
+	for k := range plainly.Columns {
+		a, b := plainly.Columns[k], colour.Columns[k]
+		for q := Surface; q < quantities; q++ {
+			se := math.Hypot(q.Of(a.StandardError), q.Of(b.StandardError))
+			if d := math.Abs(q.Of(a.Ledger) - q.Of(b.Ledger)); d > 4.1*se+1e-9 {
+				t.Errorf("%v: %v and %v differ by %.1f standard errors", q, q.Of(a.Ledger), q.Of(b.Ledger), d/se)
+			}
+		}
+		near(t, "lit", b.Lit.Sum, a.Lit.Sum, 0.003, "the even light of the plain tracer")
+	}
+}
