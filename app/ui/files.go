@@ -188,9 +188,11 @@ func (w *window) unlessUnsaved(what string, do func()) {
 		return
 	}
 	var d *dialog.CustomDialog
+	w.asked = map[string]*widget.Button{}
 	choice := func(label string, importance widget.Importance, then func()) *widget.Button {
-		b := widget.NewButton(label, func() { d.Hide(); then() })
+		b := widget.NewButton(label, func() { d.Hide(); w.asked = nil; then() })
 		b.Importance = importance
+		w.asked[label] = b
 		return b
 	}
 	text := widget.NewLabel("“" + strings.TrimSuffix(w.bench.Doc.Title(), "*") + "” has changes that are not saved.\nSave them before you " + what + "?")
@@ -201,6 +203,7 @@ func (w *window) unlessUnsaved(what string, do func()) {
 		choice("Save", widget.HighImportance, func() { w.saveThen(do) }),
 	})
 	d.Show()
+	w.tellPlaces()
 	w.tell("asked")
 }
 

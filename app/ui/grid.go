@@ -165,6 +165,9 @@ func (g *grid) refreshMaps() {
 	g.refreshPointer()
 }
 
+// formatShare writes a share as the maps tell it.
+func formatShare(v float64) string { return strconv.FormatFloat(v, 'f', 3, 64) }
+
 // refreshRay marks where the followed ray enters, in the maps of its column.
 func (g *grid) refreshRay() {
 	r := g.bench.Look.Ray
@@ -187,7 +190,7 @@ func (g *grid) refreshPointer() {
 		for j := range columns {
 			text := ""
 			if v, ok := g.bench.Look.UnderPointer(i, j); ok {
-				text = strconv.FormatFloat(v, 'f', 3, 64)
+				text = formatShare(v)
 				marks = append(marks, v)
 			}
 			g.maps[i][j].show(p.Over, p.X, p.Y, text)
@@ -232,7 +235,7 @@ func entryColour(q trace.Quantity) color.NRGBA {
 
 // Measures of the grid.
 const (
-	gutter    = 100 // left of the maps, for names
+	gutter    = 106 // left of the maps, for names
 	scaleWide = 40  // right of the maps, for the scale
 	between   = 10  // columns
 	beneath   = 8   // a row of maps

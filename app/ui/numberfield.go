@@ -46,11 +46,11 @@ func newNumberField(read func(string) (float64, error), write func(float64) stri
 
 // show puts a number into the field unless the user is typing another one.
 func (f *numberField) show(v float64) {
+	typing := f.focused && f.pending()
 	f.value = v
-	if f.focused && f.pending() {
-		return
+	if !typing {
+		f.put(v)
 	}
-	f.put(v)
 }
 
 func (f *numberField) put(v float64) {

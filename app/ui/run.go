@@ -32,7 +32,8 @@ func Run(ctx context.Context, o Options) error {
 	started := time.Now()
 	app.SetMetadata(fyne.AppMetadata{
 		ID: appID, Name: "Pavilight", Version: "0.1.0",
-		Migrations: map[string]bool{"fyneDo": true}, // all of our goroutines come in by post
+		// All of our goroutines come in by post; the toolkit checks that where it is asked to.
+		Migrations: map[string]bool{"fyneDo": os.Getenv(stagesVariable) != checkThreads},
 	})
 	makeFolders()
 	a := app.NewWithID(appID)
@@ -44,7 +45,7 @@ func Run(ctx context.Context, o Options) error {
 	if err != nil {
 		return err
 	}
-	w, err := newWindow(a, doc, stages(started))
+	w, err := newWindow(a, doc, post, stages(started))
 	if err != nil {
 		return err
 	}

@@ -4,11 +4,19 @@ import (
 	"fmt"
 	"os"
 	"time"
+
+	"fyne.io/fyne/v2"
+
+	"pavilight/app/model"
 )
 
-// stagesVariable makes the window print what it has reached, a line a stage, for
-// scripts that drive it: "READY shown 412 ms".
-const stagesVariable = "PAVILIGHT_STAGES"
+// stagesVariable makes the window print to stderr what it has reached, a line a
+// stage, for scripts that drive it: "READY refined 812 ms". With the value
+// checkThreads the toolkit also reports calls from a wrong goroutine.
+const (
+	stagesVariable = "PAVILIGHT_STAGES"
+	checkThreads   = "threads"
+)
 
 // stages returns what tells a script of a stage; it is silent unless asked for.
 func stages(started time.Time) func(string) {
@@ -24,16 +32,51 @@ func stages(started time.Time) func(string) {
 func (w *window) started(path string) {
 	w.once("shown")
 	w.enter(lookRoom)
+	w.bench.Begin() // something to look at, also while another plan is read
 	if path != "" {
 		w.open(path)
-		if w.bench.Doc.Path == "" {
-			w.bench.Begin() // something to look at while the plan is read
-		}
 		return
 	}
-	w.bench.Begin()
 	if !w.app.Preferences().Bool(hintsKey) {
 		w.app.Preferences().SetBool(hintsKey, true)
 		w.firstSteps()
+	}
+}
+
+// tellPlaces prints where things are on the screen, in its pixels, for scripts that
+// point at them: "PLACE field P1 48 439", the middle of each.
+func (w *window) tellPlaces() {
+	if os.Getenv(stagesVariable) == "" {
+		return
+	}
+	scale := w.win.Canvas().Scale()
+	tell := func(name string, o fyne.CanvasObject, shareX float32) {
+		if o == nil || !o.Visible() || o.Size().Width == 0 {
+			return
+		}
+		at := w.app.Driver().AbsolutePositionForObject(o).AddXY(o.Size().Width*shareX, o.Size().Height/2)
+		fmt.Fprintf(os.Stderr, "PLACE %s %.0f %.0f\n", name, at.X*scale, at.Y*scale)
+	}
+	for _, r := range w.list.rows {
+		if r.field != nil {
+			tell("field "+r.row.Name, r.field, 0.5)
+		}
+		if r.slider != nil {
+			thumb := r.slider.place(r.slider.value, r.slider.Size().Width) / max(1, r.slider.Size().Width)
+			tell("slider "+r.row.Name, r.slider, thumb)
+		}
+	}
+	for i := range model.Rows {
+		for j := range columns {
+			tell(fmt.Sprintf("map %d %d", i, j), w.grid.maps[i][j], 0.5)
+		}
+	}
+	tell("solid", w.solid, 0.5)
+	tell("strip", w.grid.strip, 0.5)
+	for _, d := range w.doors {
+		tell("room "+d.text, d, 0.5)
+	}
+	for name, b := range w.asked {
+		tell("answer "+name, b, 0.5)
 	}
 }

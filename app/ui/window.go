@@ -64,12 +64,14 @@ type window struct {
 	files   fileMemory
 	ledgers throttle
 	stages  map[string]bool
+	asked   map[string]*widget.Button // answers of the question that is open, by their label
 }
 
-// newWindow builds the window around a bench; nothing is shown yet.
-func newWindow(a fyne.App, doc *model.Document, tell func(string)) (*window, error) {
+// newWindow builds the window around a bench; nothing is shown yet. do hands work to
+// the toolkit's goroutine, in order, without waiting for it.
+func newWindow(a fyne.App, doc *model.Document, do func(func()), tell func(string)) (*window, error) {
 	w := &window{app: a, tell: tell, stages: map[string]bool{}}
-	bench, err := model.NewBench(doc, post, w.onLook, w.onPlan)
+	bench, err := model.NewBench(doc, do, w.onLook, w.onPlan)
 	if err != nil {
 		return nil, err
 	}
@@ -320,6 +322,7 @@ func (w *window) onLook(c model.Change) {
 		}
 		w.once("coarse")
 		if final {
+			w.tellPlaces()
 			w.tell("refined")
 		}
 	case model.StateChanged:
