@@ -1,0 +1,390 @@
+package sheet
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"pavilight/app/drawing"
+	"pavilight/facets"
+)
+
+// Pages returns the sheet's pages: what is cut, each side with its steps, the film of
+// the steps, other gears, and what to mind.
+func (s *Sheet) Pages() []*drawing.Page {
+	l := &press{sheet: s, k: 1}
+	if s.Large {
+		l.k = 1.25
+	}
+	l.front()
+	for i := range s.Rows {
+		if i == 0 || s.Rows[i].Turn {
+			l.side(i)
+		}
+	}
+	if !s.LightModel {
+		l.film()
+	}
+	l.otherGears()
+	l.mind()
+	l.foot()
+	return l.pages
+}
+
+// sideName returns the heading of a side.
+func sideName(facing facets.Side) string {
+	if facing == facets.Crown {
+		return "Crown"
+	}
+	return "Pavilion"
+}
+
+// side sets the steps from a row on until the stone is turned.
+func (l *press) side(first int) {
+	s := l.sheet
+	facing := s.Rows[first].Facing
+	last := first + 1
+	for last < len(s.Rows) && !s.Rows[last].Turn {
+		last++
+	}
+	name := sideName(facing) + " to the lap"
+	if s.LightModel {
+		name = sideName(facing)
+	}
+	l.start(joined(" – ", name, s.Plan.Name), name)
+	if first > 0 && !s.LightModel {
+		l.turn(&s.Rows[first])
+	}
+	l.overview(facing)
+	l.table(s.Rows[first:last])
+	if !s.LightModel {
+		l.checks(facing)
+	}
+}
+
+// turn sets the step in which the stone is turned.
+func (l *press) turn(r *Row) {
+	words := l.sheet.turnWords(r.Facing)
+	if x := r.Tier.Transfer; x != nil && x.Note != "" && !l.sheet.LeaveOut.Any() {
+		words += " " + x.Note
+	}
+	t := l.body()
+	height := tall(t, l.width()-14, words) + 3
+	l.page.Rectangle(drawing.Style{Stroke: black(), Width: medium}, drawing.Point{X: l.left(), Y: l.y}, l.width(), height)
+	l.box(l.left()+2, l.y+1.8, 3.1*l.k)
+	l.lines(t, black(), l.left()+8, l.y+1.5, l.width()-14, words)
+	l.y += height + 2.5
+}
+
+// overview draws the side within the ring of the gear, with the sizes to take.
+func (l *press) overview(facing facets.Side) {
+	s := l.sheet
+	edge := min(0.6*l.width(), 0.42*s.Paper.Height)
+	d := ringDrawing{sheet: s, facing: facing, type_: l.body()}
+	top := l.y
+	scale, left := d.draw(l.page, drawing.Point{X: l.left() + edge/2, Y: top + edge/2}, edge)
+	x := l.left() + edge + 4
+	width := l.right() - x
+	y := top
+	from := "Seen from above"
+	if facing == facets.Pavilion {
+		from = "Seen from below"
+	}
+	y += l.lines(l.body(), pale(), x, y, width, fmt.Sprintf("%s, drawn %s : 1. %s", from, trimmed(scale, 2), l.ringWords(facing, left)))
+	y += 2
+	y += l.lines(l.strong(), black(), x, y, width, "Sizes to take")
+	y += 0.5
+	for _, z := range s.Sizes(facing) {
+		value := z.String()
+		h := l.lines(l.body(), black(), x, y, width-l.strong().Width(value)-2, z.What)
+		l.page.Write(l.strong(), black(), drawing.Right, drawing.Point{X: x + width, Y: y + l.body().Leading()*0.78}, value)
+		y += h + 0.8
+	}
+	// What is left of the column shows the stone from the side, as it lies to the lap.
+	if free := top + edge - y - 2*l.body().Leading(); free > 25 && !s.LeaveOut.Any() {
+		right, up := fromSide(0)
+		if facing == facets.Pavilion {
+			up, right = up.Mul(-1), right.Mul(-1)
+		}
+		v := fit(s.Solution.Stone, right, up, drawing.Point{X: x + width/2, Y: y + 3 + free/2}, width-2, free-4, 1e9)
+		v.Scale = roundScale(v.Scale)
+		v.solid(l.page, s.Solution.Stone, nil, 1)
+		v.labels(l.page, s.Solution.Stone, l.body())
+		l.page.Write(l.body(), pale(), drawing.Middle, drawing.Point{X: x + width/2, Y: top + edge - 0.3*l.body().Leading()},
+			fmt.Sprintf("From the side, index %d near, %s : 1", l.nearIndex(facing), trimmed(v.Scale, 2)))
+	}
+	l.y = max(top+edge, y) + 2
+}
+
+// nearIndex returns the machine's number of the plan's index 0, which the view from
+// the side has toward the viewer.
+func (l *press) nearIndex(facing facets.Side) int {
+	m := &l.sheet.Machine
+	return m.Setting(m.Shown(0, l.sheet.Plan.Gear, facing)).Tooth
+}
+
+// ringWords tells what the ring shows.
+func (l *press) ringWords(facing facets.Side, left []string) string {
+	m := &l.sheet.Machine
+	words := fmt.Sprintf("The ring is the gear of %d as the machine shows it on this side", m.Gear)
+	if l.sheet.LeaveOut.Indices {
+		words = fmt.Sprintf("The ring has %d teeth, index %d up", m.Gear, m.Gear)
+	}
+	if facing == facets.Crown && m.CrownReversed && !l.sheet.LeaveOut.Indices {
+		words += ", after transfer"
+	}
+	words += "."
+	if len(left) > 0 {
+		words += " Too small for their name: " + listed(left) + "; see the steps."
+	}
+	return words
+}
+
+// columns of the table of steps, mm.
+type columns struct {
+	tick, number, picture, tier, angle, index, stop float64 // left edges
+	end                                             float64
+}
+
+func (l *press) columns() columns {
+	k := l.k
+	c := columns{tick: l.left(), end: l.right()}
+	c.number = c.tick + 6*k
+	if l.sheet.LightModel {
+		c.number = c.tick
+	}
+	c.picture = c.number + 6*k
+	c.tier = c.picture
+	if l.picture() > 0 {
+		c.tier += l.picture() + 2
+	}
+	widest := 12 * k
+	for i := range l.sheet.Rows {
+		widest = max(widest, l.tier().Width(l.sheet.Rows[i].Tier.Name)+2)
+	}
+	c.angle = c.tier + min(widest, 24*k)
+	c.index = c.angle + 23*k
+	// The indices get what the longest tier needs at eight a line, within bounds.
+	need := 0.0
+	for i := range l.sheet.Rows {
+		words := l.indexWords(&l.sheet.Rows[i])
+		need = max(need, l.gridWidth(l.index(), words[:min(len(words), 8)]))
+	}
+	free := c.end - c.index
+	c.stop = c.index + min(max(need+columnGap, 0.25*free), 0.5*free)
+	return c
+}
+
+// picture returns the edge of the small picture in the table, 0 where there is no
+// room for one.
+func (l *press) picture() float64 {
+	if l.width()/l.k < 150 {
+		return 0
+	}
+	return 15
+}
+
+// table sets the steps.
+func (l *press) table(rows []Row) {
+	c := l.columns()
+	l.tableHead(c)
+	for i := range rows {
+		r := &rows[i]
+		height := l.rowHeight(c, r)
+		if l.need(height) {
+			l.tableHead(c)
+		}
+		l.row(c, r, height)
+		l.y += height
+		l.page.Line(drawing.Style{Stroke: drawing.Grey(0x90), Width: thin}, drawing.Point{X: l.left(), Y: l.y}, drawing.Point{X: l.right(), Y: l.y})
+	}
+	l.y += 1.5
+	l.between(rows)
+}
+
+func (l *press) tableHead(c columns) {
+	t := l.strong()
+	l.need(3 * t.Leading())
+	y := l.y + t.Leading()*0.78
+	l.say(t, black(), c.tier, y, "Tier")
+	l.say(t, black(), c.angle, y, "Angle")
+	l.say(t, black(), c.index, y, "Index")
+	l.say(t, black(), c.stop, y, "Cut")
+	l.y += t.Leading() + 0.6
+	l.rule(l.y)
+}
+
+// columnGap is the white between two columns, mm.
+const columnGap = 3
+
+const rowPad = 1.6 // mm above and below the text of a row
+
+// angleWords returns the big number of a row and what stands under it.
+func (l *press) angleWords(r *Row) (big, small string) {
+	s := l.sheet
+	if s.LeaveOut.Angles {
+		return "", ""
+	}
+	big = fmt.Sprintf("%.*f°", s.Machine.decimals(), r.Reading.Degrees())
+	switch {
+	case r.Flat && s.Machine.TableAdapter > 0:
+		small = fmt.Sprintf("with the adapter of %s°", trimmed(s.Machine.TableAdapter.Degrees(), 2))
+	case s.Machine.offset(r.Facing) != 0:
+		small = fmt.Sprintf("plan %.2f°", r.Solved.Angle.Degrees())
+	case math.Abs(r.Miss.Degrees()) > 0.0051: // more than rounding to a hundredth
+		small = fmt.Sprintf("plan %.2f°", r.Solved.Angle.Degrees())
+	}
+	return big, small
+}
+
+// indexWords returns the settings of a row.
+func (l *press) indexWords(r *Row) []string {
+	switch {
+	case l.sheet.LeaveOut.Indices:
+		return nil
+	case r.Flat:
+		return []string{"any, as " + r.Settings[0].String()}
+	default:
+		return settingWords(r.Settings)
+	}
+}
+
+// cutWords returns when to stop and what the step does.
+func (l *press) cutWords(r *Row) (main, small string) {
+	s := l.sheet
+	switch {
+	case s.LeaveOut.Stops:
+	case s.LeaveOut.Indices:
+		main = r.StopShort
+	default:
+		main = r.Stop
+	}
+	var parts []string
+	if r.Tier.Temporary {
+		parts = append(parts, "for now; later cuts take it off")
+	}
+	if r.Tier.Stage != "" && r.Tier.Stage != "cut" {
+		parts = append(parts, r.Tier.Stage)
+	}
+	if !s.LeaveOut.Any() && r.Tier.Note != "" {
+		parts = append(parts, r.Tier.Note)
+	}
+	return main, strings.Join(parts, "; ")
+}
+
+func (l *press) rowHeight(c columns, r *Row) float64 {
+	_, small := l.angleWords(r)
+	angle := l.angle().Leading()
+	if small != "" {
+		angle += tall(l.body(), c.index-c.angle-2, small)
+	}
+	index := l.grid(l.index(), 0, 0, c.stop-c.index-columnGap, l.indexWords(r), false)
+	main, note := l.cutWords(r)
+	cut := tall(l.body(), c.end-c.stop, main)
+	if note != "" {
+		cut += tall(l.body(), c.end-c.stop, note)
+	}
+	return max(angle, index, cut, l.picture()-2*rowPad+0.6, tall(l.tier(), c.angle-c.tier-1, r.Tier.Name)) + 2*rowPad
+}
+
+func (l *press) row(c columns, r *Row, height float64) {
+	y := l.y + rowPad
+	first := y + l.angle().Leading()*0.7 // baseline of the big number; all columns share it
+	if !l.sheet.LightModel {
+		l.box(c.tick, first-3.6*l.k, 4*l.k)
+	}
+	l.say(l.body(), pale(), c.number, first, fmt.Sprint(r.Number))
+	if edge := l.picture(); edge > 0 {
+		l.thumbnail(r, drawing.Point{X: c.picture + edge/2, Y: l.y + height/2}, edge-1)
+	}
+	on := func(t drawing.Type) float64 { return first - 0.78*t.Leading() } // top of a text whose first line is on it
+	l.lines(l.tier(), black(), c.tier, on(l.tier()), c.angle-c.tier-1, r.Tier.Name)
+	big, small := l.angleWords(r)
+	if big == "" && l.sheet.LeaveOut.Angles {
+		l.blank(c.angle, first, c.index-c.angle-4)
+	}
+	l.say(l.angle(), black(), c.angle, first, big)
+	l.lines(l.body(), pale(), c.angle, first+1, c.index-c.angle-2, small)
+	if l.sheet.LeaveOut.Indices {
+		l.blank(c.index, first, c.stop-c.index-columnGap)
+	}
+	l.grid(l.index(), c.index, on(l.index()), c.stop-c.index-columnGap, l.indexWords(r), true)
+	main, note := l.cutWords(r)
+	if l.sheet.LeaveOut.Stops {
+		l.blank(c.stop, first, c.end-c.stop)
+		main = ""
+	}
+	h := 0.0
+	if main != "" {
+		h = l.lines(l.body(), black(), c.stop, on(l.body()), c.end-c.stop, main)
+	}
+	if note != "" {
+		l.lines(l.body(), pale(), c.stop, on(l.body())+h, c.end-c.stop, note)
+	}
+}
+
+// blank draws a line to write on.
+func (l *press) blank(x, y, width float64) {
+	l.page.Line(drawing.Style{Stroke: drawing.Grey(0x60), Width: thin}, drawing.Point{X: x, Y: y + 0.6}, drawing.Point{X: x + width, Y: y + 0.6})
+}
+
+// thumbnail draws the stone after a step along the axis, the new facets picked out.
+func (l *press) thumbnail(r *Row, at drawing.Point, edge float64) {
+	right, up := fromAbove()
+	if r.Facing == facets.Pavilion {
+		right, up = fromBelow()
+	}
+	v := fit(r.Step.Stone, right, up, at, edge, edge, 1e9)
+	v.solid(l.page, r.Step.Stone, r.Step.New, 0.5)
+}
+
+// between explains the settings between teeth, if there are any.
+func (l *press) between(rows []Row) {
+	if l.sheet.LeaveOut.Indices {
+		return
+	}
+	var words []string
+	for i := range rows {
+		for _, set := range rows[i].Settings {
+			if set.Part != 0 && len(words) < 4 {
+				words = append(words, set.Words())
+			}
+		}
+	}
+	if len(words) == 0 {
+		return
+	}
+	text := "Between teeth: " + strings.Join(words, "; ") + ". Plus is toward higher numbers. " +
+		"Mind the cheater: set it back before the next tier, and cut these facets by eye to their corners."
+	l.paragraph(l.strong(), black(), text)
+	l.y += 1
+}
+
+// checks sets the list to tick before the stone leaves the side.
+func (l *press) checks(facing facets.Side) {
+	list := l.sheet.Checks(facing)
+	if len(list) == 0 {
+		return
+	}
+	head := "Before it leaves the dop"
+	if l.sheet.turnAfter(facing) {
+		head = "Before transfer"
+	}
+	all := 0.0
+	for _, words := range list {
+		all += tall(l.body(), l.width()-5.5*l.k, words) + 1.1*l.k
+	}
+	l.subhead(head, min(all, 80))
+	for _, words := range list {
+		l.item(true, l.left(), l.width(), words)
+	}
+}
+
+// trimmed writes a number with at most the given decimals.
+func trimmed(v float64, decimals int) string {
+	text := fmt.Sprintf("%.*f", decimals, v)
+	if strings.Contains(text, ".") {
+		text = strings.TrimRight(strings.TrimRight(text, "0"), ".")
+	}
+	return text
+}

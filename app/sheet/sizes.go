@@ -1,0 +1,217 @@
+package sheet
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strings"
+
+	"pavilight/facets"
+)
+
+// Size is a length that a caliper or a depth gauge can take on the stone.
+type Size struct {
+	What string
+	MM   float64
+	Most float64 // where the length differs round the stone: its largest; else 0
+}
+
+// String returns the size in mm.
+func (z Size) String() string {
+	if z.Most > z.MM+0.005 {
+		return fmt.Sprintf("%.2f to %.2f mm", z.MM, z.Most)
+	}
+	return fmt.Sprintf("%.2f mm", z.MM)
+}
+
+// sizes writes lengths: 8.00 × 8.00 × 4.90 mm.
+func sizes(mm ...float64) string {
+	var words []string
+	for _, v := range mm {
+		words = append(words, fmt.Sprintf("%.2f", v))
+	}
+	return strings.Join(words, " × ") + " mm"
+}
+
+// Sizes returns what to measure before the stone leaves a side.
+func (s *Sheet) Sizes(side facets.Side) []Size {
+	m := &s.Measures
+	var all []Size
+	if s.girdleCutOn(side) {
+		all = append(all, s.across(side)...)
+		if m.Round {
+			all = append(all, Size{What: "girdle, corner to corner", MM: m.WidthMM})
+		} else {
+			all = append(all, Size{What: "girdle, length", MM: m.LengthMM}, Size{What: "girdle, width", MM: m.WidthMM})
+		}
+	}
+	girdle := Size{What: "girdle thickness, thin to thick", MM: m.GirdleMM.Min, Most: m.GirdleMM.Max}
+	if side == facets.Pavilion {
+		all = append(all,
+			Size{What: "culet to the girdle's lower line", MM: m.PavilionDepthMM},
+			Size{What: "rough left above the girdle's lower line, at least", MM: m.DepthMM - m.PavilionDepthMM + s.Rough.AllowanceMM},
+			Size{What: "culet to the dop side, at least", MM: m.DepthMM + s.Rough.AllowanceMM},
+		)
+		if m.CuletWidthMM > 0 {
+			all = append(all, Size{What: "culet flat", MM: m.CuletWidthMM})
+		}
+		return all
+	}
+	all = append(all, girdle, Size{What: "girdle's upper line to the table", MM: m.CrownHeightMM})
+	if m.TableWidthMM > 0 {
+		all = append(all, Size{What: "table width", MM: m.TableWidthMM})
+	}
+	return append(all, Size{What: "table to culet", MM: m.DepthMM})
+}
+
+// girdleCutOn reports whether a lasting girdle tier is cut while the side faces the lap.
+func (s *Sheet) girdleCutOn(side facets.Side) bool {
+	return slices.ContainsFunc(s.Rows, func(r Row) bool {
+		return r.Facing == side && r.Tier.Side == facets.Girdle && !r.Tier.Temporary
+	})
+}
+
+// across returns the distance between opposite facets of each girdle tier of the
+// side. Facets that have none opposite are left out.
+func (s *Sheet) across(side facets.Side) []Size {
+	var all []Size
+	for i := range s.Rows {
+		r := &s.Rows[i]
+		if r.Facing != side || r.Tier.Side != facets.Girdle || !s.opposite(r) {
+			continue
+		}
+		what := r.Tier.Name + ", across opposite facets"
+		if r.Tier.Temporary {
+			what += " (for now)"
+		}
+		all = append(all, Size{What: what, MM: 2 * r.Solved.Distance * s.Solution.Scale})
+	}
+	return all
+}
+
+// Checks returns what to tick before the stone leaves a side, in words.
+func (s *Sheet) Checks(side facets.Side) []string {
+	var list []string
+	add := func(format string, args ...any) { list = append(list, fmt.Sprintf(format, args...)) }
+	var names []string
+	count := 0
+	for i := range s.Rows {
+		if r := &s.Rows[i]; r.Facing == side && !r.Tier.Temporary {
+			names = append(names, r.Tier.Name)
+			count += len(r.Settings)
+		}
+	}
+	if len(names) == 0 {
+		return nil
+	}
+	add("All %d facets of %s are cut; corners meet within %.2f mm under the loupe", count, listed(names), facets.VisibleGap)
+	add("No scratch, pit or chip left; polish even in every facet")
+	if s.girdleCutOn(side) {
+		add("Girdle measured at three places or more; all within 0.02 mm of the size above")
+	}
+	if side == facets.Pavilion {
+		add("Culet to girdle line measured; rough above the girdle line is at least %.2f mm deep",
+			s.Measures.DepthMM-s.Measures.PavilionDepthMM+s.Rough.AllowanceMM)
+	} else {
+		add("Table, girdle thickness and total height measured")
+		if c, ok := s.Carats(s.Measures.VolumeMM3); ok {
+			add("Cleaned and weighed: the plan gives %.2f ct", c)
+		}
+	}
+	if !s.turnAfter(side) {
+		return list
+	}
+	add("Stone and both dops clean, dry and in line; gear locked at %s for the transfer", s.transferSetting())
+	if words := s.overWords(); words != "" && !s.LeaveOut.Indices {
+		add("After transfer: %s", words)
+	}
+	return list
+}
+
+// turnAfter reports whether the stone is turned after the side.
+func (s *Sheet) turnAfter(side facets.Side) bool {
+	return slices.ContainsFunc(s.Rows, func(r Row) bool { return r.Turn && r.Facing != side })
+}
+
+// transferSetting returns where the gear stands during transfer.
+func (s *Sheet) transferSetting() Setting {
+	return s.Machine.Setting(ToGear(s.Machine.TransferIndex, s.Machine.Gear, s.Machine.Gear))
+}
+
+// overWords names a crown facet and a pavilion facet that stand over each other, with
+// the machine's number of each: the check that the transfer kept the index. Among the
+// pairs it takes one whose numbers would show a wrong sense of turning.
+func (s *Sheet) overWords() string {
+	best, words := -1.0, ""
+	for i := range s.Rows {
+		c := &s.Rows[i]
+		if c.Facing != facets.Crown || c.Flat || c.Tier.Side == facets.Girdle || c.Tier.Temporary {
+			continue
+		}
+		for j := range s.Rows {
+			p := &s.Rows[j]
+			if p.Facing != facets.Pavilion || p.Flat || p.Tier.Temporary {
+				continue
+			}
+			for _, index := range c.Solved.Index {
+				if !slices.ContainsFunc(p.Solved.Index, func(k float64) bool { return math.Abs(k-index) < nearTooth }) {
+					continue
+				}
+				// A number tells most where it is farthest from being its own reverse.
+				half := float64(s.Plan.Gear) / 2
+				from := ToGear(index-ToGear(s.Machine.TransferIndex, s.Machine.Gear, s.Plan.Gear), s.Plan.Gear, s.Plan.Gear)
+				telling := math.Mod(from, half)
+				telling = min(telling, half-telling)
+				if telling > best+nearTooth {
+					best = telling
+					words = fmt.Sprintf("%s at %s lies over %s, which was cut at %s",
+						c.Tier.Name, s.Machine.Setting(s.Machine.Shown(index, s.Plan.Gear, facets.Crown)),
+						p.Tier.Name, s.Machine.Setting(s.Machine.Shown(index, s.Plan.Gear, facets.Pavilion)))
+				}
+			}
+		}
+	}
+	return words
+}
+
+// mirrored reports whether the finished stone is its own mirror image about the
+// plane through the axis and the index of the transfer, so that numbers running
+// the wrong way round cut the same stone.
+func (s *Sheet) mirrored() bool {
+	about := 2 * ToGear(s.Machine.TransferIndex, s.Machine.Gear, s.Plan.Gear)
+	for i := range s.Rows {
+		r := &s.Rows[i]
+		if r.Facing != facets.Crown || r.Flat {
+			continue
+		}
+		for _, index := range r.Solved.Index {
+			image := ToGear(about-index, s.Plan.Gear, s.Plan.Gear)
+			if !slices.ContainsFunc(r.Solved.Index, func(k float64) bool {
+				d := math.Abs(k - image)
+				return min(d, float64(s.Plan.Gear)-d) < nearTooth
+			}) {
+				return false
+			}
+		}
+	}
+	return true
+}
+
+// turnWords tells how to turn the stone and how the numbers run afterwards.
+func (s *Sheet) turnWords(to facets.Side) string {
+	m := &s.Machine
+	side := "crown"
+	if to == facets.Pavilion {
+		side = "pavilion"
+	}
+	words := fmt.Sprintf("Turn the stone: lock the gear at %s, transfer, and cut the %s.", s.transferSetting(), side)
+	switch {
+	case m.CrownReversed && s.mirrored():
+		words += " Crown numbers run the other way round the stone; for this plan that makes no difference."
+	case m.CrownReversed:
+		words += " Crown numbers run the other way round the stone. The numbers on this sheet allow for it."
+	default:
+		words += " Crown numbers run as on the pavilion."
+	}
+	return words
+}
