@@ -397,6 +397,9 @@ func (a *attempt) same(b *attempt) bool {
 // give no direction.
 const sameCorner = 1e-6
 
+// leastSlope is how far a solved facet must be from level and from upright.
+const leastSlope = Angle(1e-6)
+
 // through lays a tier's plane through corners.
 func (v *solver) through(t *Tier, index float64, corners []mgl64.Vec3) attempt {
 	a := attempt{angle: t.Angle, index: index}
@@ -434,7 +437,7 @@ func (v *solver) through(t *Tier, index float64, corners []mgl64.Vec3) attempt {
 			u, w = -u, -w
 		}
 		a.angle = Angle(math.Atan2(-w, u))
-		if a.angle <= 0 || a.angle >= 90*Degree {
+		if a.angle < leastSlope || a.angle > 90*Degree-leastSlope {
 			a.why = fmt.Sprintf("a facet of the %s at this index through these corners would need %s degrees",
 				t.Side, number(math.Round(a.angle.Degrees()*100)/100))
 			return a

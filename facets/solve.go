@@ -52,8 +52,10 @@ func (p *Plan) Solve() (*Stone, error) {
 }
 
 // flatTries is how often a plan with table or culet rules is cut again when
-// later tiers change the flat; the share converges by a digit or more a time.
-const flatTries = 30
+// later tiers change the flat. The share at the end is piecewise linear in the
+// depth of the cut, so a few secant steps suffice; halving as a last resort
+// gives a bit a time.
+const flatTries = 80
 
 // flatTolerance is how near a flat's share of the width comes to the plan's.
 const flatTolerance = 1e-12
@@ -65,10 +67,10 @@ func (p *Plan) Solution() (*Solution, error) {
 		return nil, err
 	}
 	unit := p.unit()
-	aims := map[int]float64{} // by tier: the share at which a flat is cut, so that it ends as wanted
+	aims := map[int]*aim{} // by tier
 	for i := range p.Tiers {
 		if t := &p.Tiers[i]; t.Stop.Rule == StopTable || t.Stop.Rule == StopCulet {
-			aims[i] = t.Stop.Value
+			aims[i] = &aim{want: t.Stop.Value, share: t.Stop.Value, high: 1}
 		}
 	}
 	rescaled := false
@@ -76,6 +78,9 @@ func (p *Plan) Solution() (*Solution, error) {
 		v := newSolver(p, unit, aims)
 		v.run()
 		if err := v.faults.Err(); err != nil {
+			if retreated(aims) {
+				continue
+			}
 			return nil, err
 		}
 		// The tolerances are shares of the solid's unit, so that must be the stone's size.
@@ -89,10 +94,58 @@ func (p *Plan) Solution() (*Solution, error) {
 		}
 	}
 	f := &Fault{File: p.File, Why: "the flats cannot be made as wide as the plan wants", Remedy: "cut the table and the culet after the tiers beside them"}
-	for i := range aims {
-		f.Tier, f.Line, f.Field = p.Tiers[i].Name, p.Tiers[i].Stop.Line, p.Tiers[i].Stop.Rule.String()
+	for i := range p.Tiers {
+		if aims[i] != nil {
+			f.Tier, f.Line, f.Field = p.Tiers[i].Name, p.Tiers[i].Stop.Line, p.Tiers[i].Stop.Rule.String()
+		}
 	}
 	return nil, Faults{f}
+}
+
+// aim searches for the share of the width at which a flat is to be cut so that
+// it has the wanted share in the end, when later facets have cut it back.
+type aim struct {
+	want      float64
+	share     float64 // to cut at
+	low, high float64 // shares known to end too narrow and too wide
+	lastShare float64 // of the cut before, 0 if there was none
+	lastEnd   float64
+}
+
+// ended takes the share that the flat had in the end and sets the next one.
+func (a *aim) ended(end float64) (reached bool) {
+	if math.Abs(end-a.want) <= flatTolerance {
+		return true
+	}
+	if end < a.want {
+		a.low = math.Max(a.low, a.share)
+	} else {
+		a.high = math.Min(a.high, a.share)
+	}
+	next := a.share * a.want / end
+	if a.lastShare > 0 && end != a.lastEnd {
+		next = a.share + (a.want-end)*(a.share-a.lastShare)/(end-a.lastEnd)
+	}
+	a.lastShare, a.lastEnd = a.share, end
+	if !(next > a.low && next < a.high) {
+		next = (a.low + a.high) / 2
+	}
+	a.share = next
+	return false
+}
+
+// retreated takes back the shares that led to faults which the plan's own did
+// not: they were too wide. It reports false if all are the plan's own.
+func retreated(aims map[int]*aim) bool {
+	any := false
+	for _, a := range aims {
+		if a.share != a.want {
+			a.high = a.share
+			a.share = (a.low + a.high) / 2
+			any = true
+		}
+	}
+	return any
 }
 
 // check looks at what a plan that was changed after reading, or never read,
@@ -132,6 +185,9 @@ func (p *Plan) check() error {
 		if t.Stop.Rule == NoStop {
 			bad(t, "", "", "nothing says how deep the tier is cut", "give it a stop rule")
 		}
+		if t.Stop.Rule == StopMeet && (len(t.Stop.Corners) == 0 || slices.ContainsFunc(t.Stop.Corners, func(c []Mark) bool { return len(c) == 0 })) {
+			bad(t, "meet", "", "it names no corner", "name three planes")
+		}
 		if t.Side < Pavilion || t.Side > Table {
 			bad(t, "side", fmt.Sprint(int(t.Side)), "there is no such side", "it may be pavilion, girdle, crown or table")
 		}
@@ -162,7 +218,7 @@ func (p *Plan) unit() float64 {
 type solver struct {
 	plan   *Plan
 	unit   float64 // plan units in one of the solid's
-	aims   map[int]float64
+	aims   map[int]*aim
 	solid  *solid
 	tiers  []SolvedTier
 	byName map[string]int
@@ -178,7 +234,7 @@ type solver struct {
 	corners cornerList
 }
 
-func newSolver(p *Plan, unit float64, aims map[int]float64) *solver {
+func newSolver(p *Plan, unit float64, aims map[int]*aim) *solver {
 	v := &solver{
 		plan: p, unit: unit, aims: aims, solid: newSolid(), corners: cornerList{stale: true}, byName: map[string]int{},
 		tiers: make([]SolvedTier, len(p.Tiers)), first: make([]int, len(p.Tiers)),
@@ -406,7 +462,7 @@ func (v *solver) flat(i int) bool {
 		}
 		return false
 	}
-	z, ok := v.solid.heightOfFlat(&r, v.aims[i]*r.width, up(t.Side))
+	z, ok := v.solid.heightOfFlat(&r, v.aims[i].share*r.width, up(t.Side))
 	if !ok {
 		if !v.failed {
 			v.fault(t, t.Stop.Rule.String(), number(t.Stop.Value), "the stone is nowhere this wide on this side, or not yet closed there",
@@ -517,11 +573,8 @@ func (v *solver) flatsReached() bool {
 		for _, c := range v.solid.faces[k].ring {
 			ring = append(ring, v.solid.corners[c].Vec2())
 		}
-		share := r.flat(ring) / r.width
-		want := v.plan.Tiers[i].Stop.Value
-		if math.Abs(share-want) > flatTolerance {
+		if !v.aims[i].ended(r.flat(ring) / r.width) {
 			reached = false
-			v.aims[i] *= want / share
 		}
 	}
 	return reached
