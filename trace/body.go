@@ -69,43 +69,32 @@ func newBody(s *facets.Stone) (*body, error) {
 // directions fill the diamond |u|+|v| <= 1 of each. Within one octant the point
 // (u, v, ±(1-|u|-|v|)) lies on a plane, so each row's value there is linear.
 func (b *body) mapDirections() {
-	b.byDirection.spans = make([]span, 2*directions*directions)
+	b.byDirection = newCells(2 * directions * directions)
 	fs := make([]plane2, len(b.rows))
 	const half = directions / 2
-	for octant := range 8 {
-		su, sv, sz := 1.0, 1.0, 1.0
-		if octant&1 != 0 {
-			su = -1
-		}
-		if octant&2 != 0 {
-			sv = -1
-		}
-		if octant&4 != 0 {
-			sz = -1
-		}
+	octant := region{step: 1.0 / half, side: half}
+	// One cell more than the diamond needs, for look-ups that round across its rim.
+	octant.outside = func(u, v, size float64) bool { return u+v > 1+1.0/half }
+	for i := range 8 {
+		sx, sy, sz := 1-2*(i&1), 1-i&2, 1-i>>1&2
 		for j, m := range b.rows {
-			// In |u|, |v|, both growing away from the middle of the square.
-			fs[j] = plane2{sz * m.z, su*m.x - sz*m.z, sv*m.y - sz*m.z}
+			// In |u| and |v|, both growing away from the middle of the square.
+			z := float64(sz) * m.z
+			fs[j] = plane2{z, float64(sx)*m.x - z, float64(sy)*m.y - z}
 		}
-		place := func(col, row int) int {
-			if su > 0 {
-				col += half
-			} else {
-				col = half - 1 - col
-			}
-			if sv > 0 {
-				row += half
-			} else {
-				row = half - 1 - row
-			}
-			if sz < 0 {
-				row += directions
-			}
-			return row*directions + col
+		// Cell (0, 0) of the octant touches the middle of its half of the map.
+		first := half*directions + half
+		if sx < 0 {
+			first--
 		}
-		// One cell more than the diamond needs, for look-ups that round across its rim.
-		outside := func(u, v, size float64) bool { return u+v > 1+1.0/half }
-		b.byDirection.fill(fs, 0, 0, 1, half, place, outside)
+		if sy < 0 {
+			first -= directions
+		}
+		if sz < 0 {
+			first += directions * directions
+		}
+		octant.cell = func(column, row int) int { return first + sy*row*directions + sx*column }
+		b.byDirection.fill(fs, &octant)
 	}
 }
 
@@ -120,8 +109,7 @@ func (b *body) largest(y vec) (row int, gauge float64) {
 	if y.z < 0 {
 		line += directions
 	}
-	sp := b.byDirection.spans[line*directions+col]
-	names := b.byDirection.names[sp.first : sp.first+sp.n]
+	names := b.byDirection.at(line*directions + col)
 	row = int(names[0])
 	gauge = b.rows[row].dot(y)
 	for _, j := range names[1:] {

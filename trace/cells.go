@@ -10,122 +10,157 @@ func (p plane2) at(u, v float64) float64 { return p.a + p.b*u + p.c*v }
 
 // cells answers, for any point of a square, which of many linear functions can
 // be the largest there: one, mostly, or a short list. The square is cut into
-// side x side cells; lists are conservative, so the true largest is always
-// among those named.
+// cells; lists are conservative, so the true largest is always among those named.
+// The one that is largest in the middle of the cell comes first.
 type cells struct {
-	spans []span   // one a cell
-	names []uint16 // the lists that spans point into
+	list  []uint16 // number of each cell's list
+	spans []span   // where each list stands in names
+	names []uint16
+
+	known map[[3]uint16]uint16 // numbers of the lists of up to three names, which many cells share
 }
 
 // span is a run of cells.names.
 type span struct{ first, n uint32 }
 
-func (c *cells) list(cell int) []uint16 {
-	s := c.spans[cell]
+// at returns the list of a cell.
+func (c *cells) at(cell int) []uint16 {
+	s := c.spans[c.list[cell]]
 	return c.names[s.first : s.first+s.n]
 }
 
-// fill names, for each cell of the square [u0, u0+size] x [v0, v0+size], the
-// functions that can be largest. The square is side cells across, a power of
-// two; place gives a cell's number from its column and row. Cells for which
-// outside says so are left empty. The square is quartered from the whole list
-// down: a function is dropped where another beats it at all four corners, for
-// then, both being linear, it beats it everywhere between.
-func (c *cells) fill(fs []plane2, u0, v0, size float64, side int, place func(col, row int) int, outside func(u, v, size float64) bool) {
+// newCells returns the map of n cells that all have an empty list, number 0.
+func newCells(n int) cells {
+	return cells{list: make([]uint16, n), spans: []span{{}}, known: map[[3]uint16]uint16{}}
+}
+
+// region is part of a map: side x side cells, a power of two, from (u, v) on, in
+// steps of step.
+type region struct {
+	u, v, step float64
+	side       int
+	cell       func(column, row int) int      // the number of one of its cells
+	outside    func(u, v, size float64) bool  // whether a part of it is not wanted; nil if all is
+	margin     float64                        // by how much a function must be larger to count as larger
+	stack      []uint16                       // lists of the quarters being worked on
+	survivors  []struct{ at, du, dv float64 } // scratch: functions at a quarter's corner, and their rises
+}
+
+// fill names, for each cell of the square, the functions that can be largest. The
+// square is quartered from the whole list down: a function is dropped where another
+// beats it at all four corners, for then, both being linear, it beats it everywhere
+// between.
+func (c *cells) fill(fs []plane2, sq *region) {
 	all := make([]uint16, len(fs))
-	for i := range fs {
+	sq.margin = 0
+	size := float64(sq.side) * sq.step
+	for i, f := range fs {
 		all[i] = uint16(i)
+		sq.margin = max(sq.margin, math.Abs(f.a)+(math.Abs(f.b)+math.Abs(f.c))*(math.Abs(sq.u)+math.Abs(sq.v)+size))
 	}
-	stack := make([]uint16, 0, 4*len(fs)) // lists of the quarters being worked on
-	var corners [][4]float64
-
-	// How much larger a function must be to count as larger: some rounding errors
-	// of the largest value in the square.
-	margin := 0.0
-	for _, f := range fs {
-		margin = max(margin, math.Abs(f.a)+(math.Abs(f.b)+math.Abs(f.c))*(math.Abs(u0)+math.Abs(v0)+size))
-	}
-	margin *= 1e-14
-
-	var quarter func(list []uint16, col, row, n int)
-	quarter = func(list []uint16, col, row, n int) {
-		step := size / float64(side)
-		u, v, w := u0+float64(col)*step, v0+float64(row)*step, float64(n)*step
-		if outside != nil && outside(u, v, w) {
-			return
-		}
-		mark := len(stack)
-		if len(list) > 1 {
-			corners = corners[:0]
-			var champion [4]int
-			for i, j := range list {
-				f := fs[j]
-				at := f.at(u, v)
-				du, dv := f.b*w, f.c*w
-				q := [4]float64{at, at + du, at + dv, at + du + dv}
-				corners = append(corners, q)
-				for k := range q {
-					if q[k] > corners[champion[k]][k] {
-						champion[k] = i
-					}
-				}
-			}
-			for i, j := range list {
-				if !beaten(i, champion, corners, margin) {
-					stack = append(stack, j)
-				}
-			}
-			list = stack[mark:]
-		}
-		if len(list) == 1 || n == 1 {
-			s := c.store(list)
-			for r := row; r < row+n; r++ {
-				for k := col; k < col+n; k++ {
-					c.spans[place(k, r)] = s
-				}
-			}
-		} else {
-			h := n / 2
-			quarter(list, col, row, h)
-			quarter(list, col+h, row, h)
-			quarter(list, col, row+h, h)
-			quarter(list, col+h, row+h, h)
-		}
-		stack = stack[:mark]
-	}
-	quarter(all, 0, 0, side)
+	sq.margin *= 1e-14 // some rounding errors of the largest value in the square
+	c.quarter(fs, sq, all, 0, 0, sq.side)
 }
 
-// beaten reports whether one of the champions is larger than function i at all
-// four corners, by more than margin.
-func beaten(i int, champion [4]int, corners [][4]float64, margin float64) bool {
-	q := &corners[i]
-	for _, k := range champion {
-		c := &corners[k]
-		if k != i && c[0] > q[0]+margin && c[1] > q[1]+margin && c[2] > q[2]+margin && c[3] > q[3]+margin {
-			return true
-		}
+// quarter fills n x n cells from a column and row on, of which list is known to name
+// all functions that count.
+func (c *cells) quarter(fs []plane2, sq *region, list []uint16, column, row, n int) {
+	u, v, w := sq.u+float64(column)*sq.step, sq.v+float64(row)*sq.step, float64(n)*sq.step
+	if sq.outside != nil && sq.outside(u, v, w) {
+		return
 	}
-	return false
-}
-
-// store keeps a list and returns where it stands; neighbours with the same list
-// mostly come one after the other and share it.
-func (c *cells) store(list []uint16) span {
-	n := len(list)
-	if have := len(c.names); have >= n {
-		same := true
-		for i := range list {
-			if c.names[have-n+i] != list[i] {
-				same = false
-				break
+	mark := len(sq.stack)
+	if len(list) > 1 {
+		sq.stack = appendLargest(sq.stack, fs, list, sq, u, v, w)
+		list = sq.stack[mark:]
+	}
+	if len(list) == 1 || n == 1 {
+		number := c.store(fs, list, u+w/2, v+w/2)
+		for r := row; r < row+n; r++ {
+			for k := column; k < column+n; k++ {
+				c.list[sq.cell(k, r)] = number
 			}
 		}
-		if same {
-			return span{uint32(have - n), uint32(n)}
+	} else {
+		h := n / 2
+		c.quarter(fs, sq, list, column, row, h)
+		c.quarter(fs, sq, list, column+h, row, h)
+		c.quarter(fs, sq, list, column, row+h, h)
+		c.quarter(fs, sq, list, column+h, row+h, h)
+	}
+	sq.stack = sq.stack[:mark]
+}
+
+// appendLargest appends to to those of list that can be the largest in the square of
+// size w at (u, v).
+func appendLargest(to []uint16, fs []plane2, list []uint16, sq *region, u, v, w float64) []uint16 {
+	// One that nowhere reaches what another has everywhere is out: a cheap first sieve.
+	floor := math.Inf(-1)
+	for _, j := range list {
+		f := &fs[j]
+		floor = max(floor, f.at(u, v)+min(0, f.b*w)+min(0, f.c*w))
+	}
+	floor -= sq.margin
+	mark := len(to)
+	sq.survivors = sq.survivors[:0]
+	var champion [4]int // who is largest at each corner
+	best := [4]float64{math.Inf(-1), math.Inf(-1), math.Inf(-1), math.Inf(-1)}
+	for _, j := range list {
+		f := &fs[j]
+		at, du, dv := f.at(u, v), f.b*w, f.c*w
+		if at+max(0, du)+max(0, dv) < floor {
+			continue
+		}
+		for k, g := range [4]float64{at, at + du, at + dv, at + du + dv} {
+			if g > best[k] {
+				best[k], champion[k] = g, len(sq.survivors)
+			}
+		}
+		to = append(to, j)
+		sq.survivors = append(sq.survivors, struct{ at, du, dv float64 }{at, du, dv})
+	}
+
+	kept := mark
+	for i := range sq.survivors {
+		s := &sq.survivors[i]
+		beaten := false
+		for _, k := range champion {
+			c := &sq.survivors[k]
+			// The least lead of the champion over the square, from its corner's and its slopes'.
+			lead := c.at - s.at + min(0, c.du-s.du) + min(0, c.dv-s.dv)
+			beaten = beaten || k != i && lead > sq.margin
+		}
+		if !beaten {
+			to[kept] = to[mark+i]
+			kept++
 		}
 	}
-	first := len(c.names)
+	return to[:kept]
+}
+
+// store keeps a list for a cell whose middle is (u, v) and returns its number.
+func (c *cells) store(fs []plane2, list []uint16, u, v float64) uint16 {
+	first := 0
+	for i := range list {
+		if fs[list[i]].at(u, v) > fs[list[first]].at(u, v) {
+			first = i
+		}
+	}
+	list[0], list[first] = list[first], list[0]
+	var key [3]uint16
+	if len(list) <= len(key) {
+		for i, j := range list {
+			key[i] = j + 1
+		}
+		if number, ok := c.known[key]; ok {
+			return number
+		}
+	}
+	number := uint16(len(c.spans))
+	c.spans = append(c.spans, span{uint32(len(c.names)), uint32(len(list))})
 	c.names = append(c.names, list...)
-	return span{uint32(first), uint32(n)}
+	if len(list) <= len(key) {
+		c.known[key] = number
+	}
+	return number
 }

@@ -147,28 +147,22 @@ func newKernel(t *tracer) *kernel {
 		k.planes = append(k.planes, [4]float32{float32(m.x), float32(m.y), float32(m.z), math.Float32frombits(uint32(2 * i))})
 		k.normals = append(k.normals, [4]float32{float32(n.x), float32(n.y), float32(n.z), float32(t.toEye[j])})
 	}
-	// List 0 is the end of every chain; its facets are as good as any.
-	k.lists = append(k.lists, list{})
-	known := map[span]uint16{}
-	k.cells = make([]uint16, len(b.byDirection.spans))
-	for c, sp := range b.byDirection.spans {
-		if sp.n == 0 {
-			continue
-		}
-		at, ok := known[sp]
-		if !ok {
-			names := b.byDirection.list(c)
-			at = uint16(len(k.lists))
-			known[sp] = at
-			for i := 0; i < len(names); i += 2 {
-				l := list{a: number[names[i]], b: number[names[min(i+1, len(names)-1)]]}
-				if i+2 < len(names) {
-					l.next = uint16(len(k.lists) + 1)
-				}
-				k.lists = append(k.lists, l)
+	// Lists keep their numbers; what is longer than a pair goes on behind them. List 0
+	// is empty and the end of every chain; its facets are as good as any.
+	k.cells = b.byDirection.list
+	k.lists = make([]list, len(b.byDirection.spans))
+	for at, sp := range b.byDirection.spans {
+		names := b.byDirection.names[sp.first : sp.first+sp.n]
+		for ; len(names) > 0; at = len(k.lists) - 1 {
+			k.lists[at] = list{a: number[names[0]], b: number[names[min(1, len(names)-1)]]}
+			if names = names[min(2, len(names)):]; len(names) > 0 {
+				k.lists[at].next = uint16(len(k.lists))
+				k.lists = append(k.lists, list{})
 			}
 		}
-		k.cells[c] = at
+	}
+	if len(k.lists) > math.MaxUint16 {
+		return nil
 	}
 	return k
 }

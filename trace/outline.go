@@ -53,13 +53,14 @@ func newOutline(b *body, f frame, corners []vec) *outline {
 			o.facet[1] = append(o.facet[1], j)
 		}
 	}
-	place := func(col, row int) int { return row*looks + col }
+	whole := region{u: -o.half, v: -o.half, step: 2 * o.half / looks, side: looks}
+	whole.cell = func(column, row int) int { return row*looks + column }
 	for _, side := range []struct {
 		cells *cells
 		fs    []plane2
 	}{{&o.front, o.upper}, {&o.back, o.lower}} {
-		side.cells.spans = make([]span, looks*looks)
-		side.cells.fill(side.fs, -o.half, -o.half, 2*o.half, looks, place, nil)
+		*side.cells = newCells(looks * looks)
+		side.cells.fill(side.fs, &whole)
 	}
 	return o
 }
@@ -74,12 +75,12 @@ func (o *outline) enter(u, v float64) (facet int, at vec, ok bool) {
 	}
 	cell := row*looks + col
 	facet, top := 0, math.Inf(-1)
-	for _, j := range o.front.list(cell) {
+	for _, j := range o.front.at(cell) {
 		if h := o.upper[j].at(u, v); h > top {
 			facet, top = o.facet[0][j], h
 		}
 	}
-	for _, j := range o.back.list(cell) {
+	for _, j := range o.back.at(cell) {
 		if o.lower[j].at(u, v) >= -top {
 			return 0, vec{}, false
 		}
