@@ -194,11 +194,20 @@ const sameTooth = 1e-7
 func expand(base []float64, fold int, mirror bool, gear int) []float64 {
 	g := float64(gear)
 	var all []float64
+	seen := map[int64]bool{}
 	add := func(i float64) {
 		i = onGear(i, g)
-		if !slices.ContainsFunc(all, func(j float64) bool { return teethApart(i, j, g) < sameTooth }) {
-			all = append(all, i)
+		place := func(i float64) int64 { return int64(math.Round(i / sameTooth)) }
+		// Neighbouring places, also across index 0, are the same tooth.
+		for _, j := range [...]float64{i, i - g, i + g} {
+			for step := int64(-1); step <= 1; step++ {
+				if seen[place(j)+step] {
+					return
+				}
+			}
 		}
+		seen[place(i)] = true
+		all = append(all, i)
 	}
 	for _, i := range base {
 		for _, sign := range []float64{1, -1} {
