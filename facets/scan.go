@@ -171,7 +171,7 @@ func (sc *Scan) join(raw *rawMesh) error {
 
 // findFacets groups the surface into flats and looks for dents.
 func (sc *Scan) findFacets() {
-	f, ok := findFlats(sc.hull, sc.Resolution)
+	f, ok := findFlats(sc.mesh, sc.hull, sc.Resolution)
 	if !ok {
 		return
 	}

@@ -52,12 +52,16 @@ const curvedFall = 2 * math.Ln2
 // falls with each step; above it the number stands still until the tolerance
 // begins to swallow true facets. The answer is the tolerance at which the
 // number falls least from the step before to the step after; of several the finest.
-func findFlats(hull *mesh, resolution float64) (flats, bool) {
+//
+// The search starts no lower than half the depth at which most of the surface
+// lies below its hull: with fewer corners than that the hull of a noisy scan
+// is a stone of its own.
+func findFlats(surface, hull *mesh, resolution float64) (flats, bool) {
 	low, high := bounds(hull.points)
 	reach := high.Sub(low).Len() / 2
 	g := newGrower(hull)
 	var ladder []flats
-	finest := max(finestFactor*resolution, reach*math.Ldexp(1, -44))
+	finest := max(finestFactor*resolution, reach*math.Ldexp(1, -44), usualDepth(surface, g)/2)
 	for tolerance := finest; tolerance < coarsestShare*reach; tolerance *= 2 {
 		ladder = append(ladder, g.divide(tolerance))
 	}
@@ -79,6 +83,42 @@ func findFlats(hull *mesh, resolution float64) (flats, bool) {
 		return flats{}, false
 	}
 	return ladder[best], true
+}
+
+// usualDepth is the median, by area, of how deep the surface's corners lie below its hull.
+func usualDepth(surface *mesh, g *grower) float64 {
+	const (
+		looks     = 3e6 // corners times hull triangles: some 10 ms
+		mostShown = 500
+	)
+	samples := min(mostShown, max(50, int(looks)/len(g.hull.triangles)))
+	total := 0.0
+	for t := range surface.triangles {
+		_, a := surface.normal(int32(t))
+		total += a
+	}
+	var depths []float64
+	sum := 0.0
+	for t, c := range surface.triangles {
+		_, a := surface.normal(int32(t))
+		sum += a
+		// One look each time another share of the area has been passed.
+		for float64(len(depths)) < sum/total*float64(samples)-0.5 {
+			p := surface.points[c[0]]
+			depth := math.Inf(1)
+			for i, n := range g.normals {
+				if g.areas[i] > 0 {
+					depth = min(depth, n.Dot(g.hull.points[g.hull.triangles[i][0]].Sub(p)))
+				}
+			}
+			depths = append(depths, depth)
+		}
+	}
+	if len(depths) == 0 {
+		return 0
+	}
+	slices.Sort(depths)
+	return max(0, depths[len(depths)/2])
 }
 
 // main returns how many of the largest flats make up mainShare of the surface.

@@ -13,6 +13,9 @@ const (
 	// girdleLean: a facet this near to upright belongs to the girdle. Cutters
 	// set it at 90 degrees and no crown or pavilion facet stands steeper than 80.
 	girdleLean = 10 * Degree
+	// girdleTrue: round the table's normal the girdle's facets stand upright to
+	// this; machines set 90 degrees to a fraction of one, scans read a degree.
+	girdleTrue = 2 * Degree
 	// axisLean: the table's normal is roughly the axis of symmetry; the line
 	// from the centre of the solid to the middle of the table shows the axis.
 	axisLean = 8 * Degree
@@ -112,19 +115,27 @@ func (s *Stone) facetCentre(i int) mgl64.Vec3 {
 	return o.Add(sum.Mul(1 / area))
 }
 
-// findTable returns the normal and number of the table: the largest flat whose
-// normal is roughly the axis of the solid and round which a girdle closes;
-// failing that the largest on the axis, failing that the largest.
+// findTable returns the normal and number of the table. A flat may be the table
+// if it is no smaller than tableShare of the largest; for it speaks that a
+// girdle closes round its normal, and that its middle lies on the axis through
+// the solid's centre; of those with most to speak for them it is the largest.
+// (A step cut's pavilion has flats larger than its table, but neither holds for them.)
 func findTable(s *Stone, centre mgl64.Vec3) (mgl64.Vec3, int) {
+	largest := 0.0
+	for _, f := range s.Facets {
+		largest = max(largest, f.Area)
+	}
 	best, bestRank := 0, -1
 	for i, f := range s.Facets {
+		if f.Area < tableShare*largest {
+			continue
+		}
 		rank := 0
-		axis := s.facetCentre(i).Sub(centre)
-		if axis.Normalize().Dot(f.Normal) > math.Cos(float64(axisLean)) {
-			rank = 1
-			if s.girdleCloses(f.Normal) {
-				rank = 2
-			}
+		if s.girdleCloses(f.Normal) {
+			rank++
+		}
+		if s.facetCentre(i).Sub(centre).Normalize().Dot(f.Normal) > math.Cos(float64(axisLean)) {
+			rank++
 		}
 		if rank > bestRank || rank == bestRank && f.Area > s.Facets[best].Area {
 			best, bestRank = i, rank
@@ -132,6 +143,10 @@ func findTable(s *Stone, centre mgl64.Vec3) (mgl64.Vec3, int) {
 	}
 	return s.Facets[best].Normal, best
 }
+
+// tableShare: a single step's two pavilion flats are half again as large as
+// its table; smaller flats are kept out, for which both may hold by chance.
+const tableShare = 0.4
 
 // girdleCloses reports whether the upright facets about an axis face all
 // round: no gap between their azimuths reaches a half turn.
@@ -144,7 +159,7 @@ func (s *Stone) girdleCloses(axis mgl64.Vec3) bool {
 	e2 := axis.Cross(e1)
 	var azimuths []float64
 	for _, f := range s.Facets {
-		if math.Abs(f.Normal.Dot(axis)) < math.Sin(float64(girdleLean)) {
+		if math.Abs(f.Normal.Dot(axis)) < math.Sin(float64(girdleTrue)) {
 			azimuths = append(azimuths, math.Atan2(f.Normal.Dot(e2), f.Normal.Dot(e1)))
 		}
 	}
@@ -231,29 +246,70 @@ func outlineCentre(ring []mgl64.Vec2) mgl64.Vec2 {
 }
 
 // lengthAzimuth returns the azimuth, in radians, to turn to index 0: that of
-// the outline's length, or for a round outline that of the largest crown facet
-// (pavilion facet, if there is no crown).
+// the outline's length, or for a round outline that of a mirror plane.
 func (s *Stone) lengthAzimuth(turn mgl64.Mat3, table int) float64 {
-	o := seenFromAbove(s, turn)
-	along := math.Atan2(-o.across[0], o.across[1])
-	if o.length >= roundLimit*o.width {
+	along, stretch := principalAxis(seenFromAbove(s, turn).hull)
+	if stretch >= roundLimit {
 		return along
 	}
-	best, bestArea := -1, 0.0
+	return s.mirrorAzimuth(turn, table)
+}
+
+// mirrorAzimuth returns the azimuth, of those of the largest facets of one part
+// of the stone and half way between two of them, across which the stone is most
+// nearly its own mirror image; the first of several alike.
+func (s *Stone) mirrorAzimuth(turn mgl64.Mat3, table int) float64 {
+	normals := make([]mgl64.Vec3, len(s.Facets))
+	for i, f := range s.Facets {
+		normals[i] = turn.Mul3x1(f.Normal)
+	}
+	level := math.Sin(float64(Degree))
+	var own []float64
 	for _, side := range []Side{Crown, Pavilion, Girdle} {
+		largest := 0.0
+		leans := func(i int) bool {
+			return sideOf(normals[i], i == table) == side && math.Hypot(normals[i][0], normals[i][1]) > level
+		}
 		for i, f := range s.Facets {
-			n := turn.Mul3x1(f.Normal)
-			// Facets of one tier differ by rounding: the first in the file's order stands for all.
-			if sideOf(n, i == table) == side && math.Hypot(n[0], n[1]) > math.Sin(float64(Degree)) && f.Area > 1.001*bestArea {
-				best, bestArea = i, f.Area
+			if leans(i) {
+				largest = max(largest, f.Area)
 			}
 		}
-		if best >= 0 {
-			n := turn.Mul3x1(s.Facets[best].Normal)
-			return math.Atan2(n[1], n[0])
+		for i, f := range s.Facets {
+			// Facets of one tier differ by rounding or a scanner's noise.
+			if leans(i) && f.Area > 0.99*largest && len(own) < 16 {
+				own = append(own, azimuthOf(normals[i].Vec2()))
+			}
+		}
+		if len(own) > 0 {
+			break
 		}
 	}
-	return along
+	if len(own) == 0 {
+		return 0
+	}
+	candidates := own
+	for _, a := range own[1:] {
+		candidates = append(candidates, (own[0]+a)/2, (own[0]+a)/2+math.Pi/2)
+	}
+	best, least := own[0], math.Inf(1)
+	for _, a := range candidates {
+		sin, cos := math.Sincos(2 * a)
+		off := 0.0
+		for _, n := range normals {
+			image := mgl64.Vec3{cos*n[0] + sin*n[1], sin*n[0] - cos*n[1], n[2]}
+			nearest := -1.0
+			for _, m := range normals {
+				nearest = max(nearest, image.Dot(m))
+			}
+			off += 1 - nearest
+		}
+		// Alike to a thousandth of a degree a facet is alike.
+		if alike := 1e-10 * float64(len(normals)); off < least-alike {
+			best, least = a, off
+		}
+	}
+	return best
 }
 
 // tipPointsBack reports whether the outline's point, if it has one end more
@@ -265,6 +321,25 @@ func tipPointsBack(ring []mgl64.Vec2) bool {
 	}
 	// A hundredth of the length: below it the ends are alike and the turn is left alone.
 	return outlineCentre(ring)[0]-(low+high)/2 > (high-low)/100
+}
+
+// principalAxis returns the azimuth along which an outline is longest by its
+// second moments, which for a symmetric outline is its axis whatever the
+// girdle's flats, and the ratio of its extents by them.
+func principalAxis(ring []mgl64.Vec2) (azimuth, stretch float64) {
+	centre := outlineCentre(ring)
+	var xx, xy, yy float64
+	for i := range ring {
+		// Second moments of the triangle from the centre to an edge, times 12.
+		a, b := ring[i].Sub(centre), ring[(i+1)%len(ring)].Sub(centre)
+		area := a[0]*b[1] - a[1]*b[0]
+		xx += area * (a[0]*a[0] + a[0]*b[0] + b[0]*b[0])
+		yy += area * (a[1]*a[1] + a[1]*b[1] + b[1]*b[1])
+		xy += area * (2*a[0]*a[1] + a[0]*b[1] + a[1]*b[0] + 2*b[0]*b[1]) / 2
+	}
+	half := math.Hypot((xx-yy)/2, xy)
+	mean := (xx + yy) / 2
+	return math.Atan2(2*xy, xx-yy) / 2, math.Sqrt((mean + half) / (mean - half))
 }
 
 // girdleMiddle returns the height midway between the mean upper and the mean

@@ -49,12 +49,29 @@ func (m *rawMesh) resolution() float64 {
 	}
 	// A float32 has a 24-bit significand, a float64 one of 53 bits.
 	ulp := math.Ldexp(largest, -52)
-	if m.binary32 {
+	if m.binary32 || m.digits >= digitsOfFloat32 && m.holdsFloat32() {
 		ulp = math.Ldexp(largest, -23)
 	} else if m.digits > 0 && m.digits < 16 {
 		ulp = math.Pow(10, math.Floor(math.Log10(largest))+1-float64(m.digits))
 	}
 	return ulp
+}
+
+// digitsOfFloat32 is the number of digits that print every float32 apart (IEEE 754-2019, 5.12.2).
+const digitsOfFloat32 = 9
+
+// holdsFloat32 reports whether every coordinate is a float32 that was printed
+// with more digits than it has, as many programs do.
+func (m *rawMesh) holdsFloat32() bool {
+	for _, p := range m.points {
+		for _, x := range p {
+			// Nine digits leave up to 5e-9 of the number, a hundredth of a float32's step.
+			if math.Abs(float64(float32(x))-x) > 5e-9*math.Abs(x) {
+				return false
+			}
+		}
+	}
+	return true
 }
 
 // scanReader reads one scan, counting bytes and lines so that a fault can name its place.
