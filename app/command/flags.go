@@ -21,6 +21,7 @@ type line struct {
 
 	Look  lookCommand  `cmd:"" help:"Show where the light goes: ledger and maps."`
 	Check checkCommand `cmd:"" help:"Solve and measure the solid, and report every fault."`
+	Cut   cutCommand   `cmd:"" help:"Make the sheet for the bench: steps, drawings, sizes, cautions (PDF)."`
 	Gems  gemsCommand  `cmd:"" help:"Print the material table, or all about one material, with sources."`
 }
 
@@ -108,7 +109,7 @@ func knownCommand(args []string, model *kong.Application) error {
 		return nil
 	}
 	known := strings.Join(names, ", ")
-	if slices.Contains([]string{"tune", "cut", "tell"}, args[first]) {
+	if slices.Contains([]string{"tune", "tell"}, args[first]) {
 		return commandFaultf("%s does not exist yet; the commands are %s", args[first], known)
 	}
 	if isStoneFile(args[first]) {

@@ -40,11 +40,9 @@ func (l *press) front() {
 	l.facts()
 	l.threeViews()
 	l.maps()
-	l.tolerance()
-	l.care()
-	l.need(7)
-	l.ruler(l.left(), l.y+6)
-	l.y += 7
+	for _, part := range []func(){l.tolerance, l.care} {
+		l.whole(part)
+	}
 }
 
 func by(author string) string {
@@ -245,17 +243,25 @@ func (l *press) heights(v *View, x float64) {
 	}
 }
 
-// maps sets the six maps and the ledger.
+// maps sets the maps and the ledger, side by side or, on narrow paper, one below the
+// other.
 func (l *press) maps() {
 	light := l.sheet.Light
 	if light == nil || len(light.Columns) == 0 {
 		return
 	}
 	t := l.body()
-	edge := min((l.width()-26*l.k)/6-2, 27)
+	columns := float64(len(light.Columns))
+	beside := l.width() > (25+14*columns+70)*l.k
+	edge := min((l.width()-26*l.k)/(2*columns)-2, 27)
 	rows := 2 + int(trace.Unresolved) + 1
 	table := float64(rows) * t.Leading()
-	l.subhead("Where the light goes, seen face-up", max(2*edge+4, table)+2)
+	height := max(t.Leading()+2*edge+3, table) + 1
+	if !beside {
+		edge = min((l.width()-26*l.k)/columns-2, 22)
+		height = t.Leading() + 2*edge + 5 + table
+	}
+	l.subhead("Where the light goes, seen face-up", height)
 	top := l.y
 	quantities := []struct {
 		q     trace.Quantity
@@ -271,18 +277,27 @@ func (l *press) maps() {
 			at := drawing.Point{X: x + 14*l.k + float64(i)*(edge+2), Y: y}
 			l.page.Place(paletted(c.Map.Field(q.q), c.Map.Pixels, q.map_), at, edge, edge)
 			if row == 0 {
-				l.page.Write(t, pale(), drawing.Middle, drawing.Point{X: at.X + edge/2, Y: top + 0.78*t.Leading()}, mediumName(c.Medium.Key, c.Medium.Name))
+				l.page.Write(t, pale(), drawing.Middle, drawing.Point{X: at.X + edge/2, Y: top + 0.78*t.Leading()}, columnName(c))
 			}
 		}
-		l.scale(q.map_, drawing.Point{X: x + 14*l.k + float64(len(light.Columns))*(edge+2), Y: y}, edge)
+		l.scale(q.map_, drawing.Point{X: x + 14*l.k + columns*(edge+2), Y: y}, edge)
 	}
-	l.ledger(x+14*l.k+float64(len(light.Columns))*(edge+2)+11*l.k, top)
-	l.y = top + max(t.Leading()+2*edge+3, table) + 1
+	if beside {
+		l.ledger(x+14*l.k+columns*(edge+2)+11*l.k, top)
+	} else {
+		l.ledger(x, top+t.Leading()+2*edge+4)
+	}
+	l.y = top + height
 }
 
-func mediumName(key, name string) string {
-	if key != "" {
-		return key
+// columnName returns what a column is called: the medium's key.
+func columnName(c *trace.Column) string {
+	name := c.Medium.Key
+	if name == "" {
+		name = c.Medium.Name
+	}
+	if c.Dish {
+		name += ", dish"
 	}
 	return name
 }
@@ -337,7 +352,7 @@ func (l *press) ledger(x, y float64) {
 		}
 		y += t.Leading()
 	}
-	row("", func(c *trace.Column) string { return mediumName(c.Medium.Key, c.Medium.Name) }, l.strong())
+	row("", func(c *trace.Column) string { return columnName(c) }, l.strong())
 	for q := trace.Surface; q <= trace.Absorbed; q++ {
 		row(q.String(), func(c *trace.Column) string { return fmt.Sprintf("%.3f", q.Of(c.Ledger)) }, t)
 	}
@@ -443,7 +458,7 @@ func (s *Sheet) criticalWords() string {
 		if margin < 0 {
 			where = "below"
 		}
-		parts = append(parts, fmt.Sprintf("%.1f° %s it in %s", math.Abs(margin), where, mediumName(c.Medium.Key, c.Medium.Name)))
+		parts = append(parts, fmt.Sprintf("%.1f° %s it in %s", math.Abs(margin), where, columnName(c)))
 	}
 	if len(parts) == 0 {
 		return ""

@@ -40,6 +40,8 @@ type press struct {
 	part  string  // heading to repeat on a page that goes on
 	k     float64 // size of type over the usual one
 
+	later []func() // parts that found no room on the front page
+
 	lacking bool // a letter was met that the typeface lacks
 }
 
@@ -222,6 +224,17 @@ func gridCell(t drawing.Type, words []string) float64 {
 // gridWidth returns the width of words in one line of a grid.
 func (l *press) gridWidth(t drawing.Type, words []string) float64 {
 	return float64(len(words)) * gridCell(t, words)
+}
+
+// whole sets a part where all of it fits on the page; else it is left for later.
+func (l *press) whole(part func()) {
+	pages, page, marks, y := len(l.pages), l.page, len(l.page.Marks), l.y
+	part()
+	if len(l.pages) > pages {
+		l.pages, l.page, l.y = l.pages[:pages], page, y
+		page.Marks = page.Marks[:marks]
+		l.later = append(l.later, part)
+	}
 }
 
 // box draws a box to tick.

@@ -72,6 +72,9 @@ func (l *press) otherGears() {
 func (l *press) mind() {
 	s := l.sheet
 	l.begin("Polish, notes and care – "+s.Plan.Name, "Polish, notes and care", 0.45*s.Paper.Height)
+	for _, part := range l.later {
+		part()
+	}
 	if !s.LightModel {
 		if len(s.Plan.Polish) > 0 {
 			l.subhead("Polish", l.body().Leading())
@@ -114,6 +117,9 @@ func (l *press) mind() {
 	l.blank(l.left()+l.width()/2+7*l.k, l.y, l.width()/2-7*l.k)
 	l.y += 4
 	l.paragraph(l.body(), pale(), strings.TrimSpace(s.Program))
+	l.need(9)
+	l.ruler(l.left(), l.y+7)
+	l.y += 9
 }
 
 // benchCautions are the dangers of the bench whatever the stone. Sources: the usual

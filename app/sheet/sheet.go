@@ -154,3 +154,27 @@ func joined(with string, parts ...string) string {
 	}
 	return strings.Join(full, with)
 }
+
+// Notes returns what the user should know that is no error.
+func (s *Sheet) Notes() []string {
+	var notes []string
+	between := 0
+	for i := range s.Rows {
+		r := &s.Rows[i]
+		for _, set := range r.Settings {
+			if set.Part != 0 {
+				between++
+			}
+		}
+		if len(r.Step.New) == 0 {
+			notes = append(notes, fmt.Sprintf("tier %s takes nothing off the rough that the steps start from", r.Tier.Name))
+		}
+	}
+	if between > 0 {
+		notes = append(notes, fmt.Sprintf("%d facets lie between the teeth of the gear of %d; the sheet gives tooth and cheater", between, s.Machine.Gear))
+	}
+	if s.Rough.TooSmall {
+		notes = append(notes, "the plan's rough does not hold the stone along its axes; the steps start from a box around the stone")
+	}
+	return notes
+}

@@ -1,0 +1,437 @@
+package command
+
+import (
+	"bytes"
+	"context"
+	"errors"
+	"fmt"
+	"image/png"
+	"io"
+	"os"
+	"path/filepath"
+	"runtime/debug"
+	"slices"
+	"strconv"
+	"strings"
+	"time"
+
+	"pavilight/app/drawing"
+	"pavilight/app/sheet"
+	"pavilight/facets"
+	"pavilight/gems"
+	"pavilight/trace"
+)
+
+// cutCommand makes the sheet for the bench.
+type cutCommand struct {
+	subjectFlags
+	More     []string `arg:"" optional:"" name:"more" help:"Further plans, to be bound with the first into one booklet."`
+	Machine  string   `type:"word" placeholder:"NAME" help:"The machine that the numbers are for: its name in the folder of machines, or its file (.toml)."`
+	Paper    string   `default:"a4" type:"word" placeholder:"NAME" help:"The paper: a4, letter or a5 (${default})."`
+	Large    bool     `help:"Set type a quarter larger."`
+	Order    string   `default:"lap" type:"word" placeholder:"NAME" help:"The order of a tier's indices: lap, as they follow on the gear, or opposites first (${default})."`
+	Gears    string   `type:"word" placeholder:"N,..." help:"Add the indices on these gears, the facets that do not fit marked."`
+	LeaveOut string   `name:"leave-out" type:"word" placeholder:"PARTS" help:"Make a pupil's copy without these parts, and a teacher's copy beside it: angles, indices, stops, with commas between."`
+	As       string   `default:"pdf" type:"word" placeholder:"KINDS" help:"What to write: pdf, svg, png, with commas between; svg and png give a file a page (${default})."`
+	Title    string   `default:"Cutting sheets" type:"word" placeholder:"WORDS" help:"The title of a booklet (${default})."`
+	In       string   `default:"air,water,oil" type:"word" placeholder:"NAMES" help:"The surroundings of the small maps (${default})."`
+	Head     float64  `default:"10" type:"number" least:"0" most:"90" unit:"degrees" placeholder:"DEG" help:"Half-angle of the cone that the viewer's head blocks, 0 to 90 degrees (${default})."`
+	NoMaps   bool     `name:"no-maps" help:"Leave out the maps and the ledger."`
+	Out      string   `type:"word" placeholder:"DIR" help:"Write into this folder, not into the current one."`
+}
+
+// cutResult is what cut prints as JSON.
+type cutResult struct {
+	Files  []string   `json:"files"`
+	Pages  int        `json:"pages"`
+	Sheets []cutSheet `json:"sheets"`
+}
+
+// cutSheet is one plan's sheet.
+type cutSheet struct {
+	Plan       string    `json:"plan"`
+	Material   string    `json:"material"`
+	WidthMM    float64   `json:"width_mm"`
+	Carats     *float64  `json:"carats"` // null where no density is known
+	Machine    string    `json:"machine"`
+	Gear       int       `json:"gear"`
+	LightModel bool      `json:"light_model_only"`
+	Steps      []cutStep `json:"steps"`
+}
+
+// cutStep is one tier as the machine shows it.
+type cutStep struct {
+	Tier       string   `json:"tier"`
+	ToLap      string   `json:"to_lap"` // the side that faces the lap
+	AngleDeg   float64  `json:"angle_deg"`
+	SetDeg     float64  `json:"set_angle_deg"`
+	Set        []string `json:"set_index"`
+	Stop       string   `json:"stop"`
+	RemovedMM3 float64  `json:"removed_mm3"`
+	LayerMM    float64  `json:"layer_mm"`
+}
+
+// Run makes the sheet and writes it.
+func (k *cutCommand) Run(c call) error {
+	job, err := k.job()
+	if err != nil {
+		return err
+	}
+	kinds, err := words("--as", k.As, "pdf", "svg", "png")
+	if err != nil {
+		return err
+	}
+	media, err := surroundings(k.In)
+	if err != nil {
+		return err
+	}
+	plans, materials, err := k.plans()
+	if err != nil {
+		return err
+	}
+	folder := k.Out
+	if folder == "" {
+		folder = "."
+	}
+	if _, err := openOut(folder); err != nil { // told before the work, not after it
+		return err
+	}
+	bar := newProgress(c.env.Stderr, c.env.Terminal)
+	defer bar.clear()
+	var sheets []*sheet.Sheet
+	for i, plan := range plans {
+		one := job
+		one.Plan, one.Material = plan, materials[i]
+		if !k.NoMaps {
+			report := func(r *trace.Result) { bar.show((float64(i) + r.Done) / float64(len(plans))) }
+			if one.Light, err = k.light(c, plan, materials[i], media, report); err != nil {
+				return err
+			}
+		}
+		s, err := newSheet(one)
+		if err != nil {
+			return err
+		}
+		sheets = append(sheets, s)
+	}
+	bar.clear()
+	for _, s := range sheets {
+		for _, note := range s.Notes() {
+			c.warn("%s: %s", s.Plan.Name, note)
+		}
+	}
+	files, pages, err := k.documents(sheets, kinds)
+	if err != nil {
+		return err
+	}
+	if err := context.Cause(c); err != nil {
+		return err
+	}
+	result := cutResult{Pages: pages}
+	for _, f := range files {
+		path := filepath.Join(folder, f.name)
+		if err := drawing.WriteFile(path, func(w io.Writer) error { _, err := w.Write(f.content); return err }); err != nil {
+			return disk(path, err)
+		}
+		result.Files = append(result.Files, path)
+	}
+	for _, s := range sheets {
+		result.Sheets = append(result.Sheets, newCutSheet(s))
+	}
+	if c.json {
+		return printJSON(c.out, result)
+	}
+	printCut(c.out, &result)
+	return nil
+}
+
+// job reads the flags that are the same for every plan.
+func (k *cutCommand) job() (sheet.Job, error) {
+	job := sheet.Job{Machine: sheet.Plain(), HeadDeg: k.Head, Large: k.Large, Program: programVersion()}
+	var err error
+	if job.Paper, err = sheet.PaperNamed(k.Paper); err != nil {
+		return job, commandFaultf("--paper: %w", err)
+	}
+	order, err := words("--order", k.Order, "lap", "opposites")
+	if err != nil {
+		return job, err
+	}
+	job.Opposites = slices.Contains(order, "opposites")
+	if k.Machine != "" {
+		machines, err := sheet.UserMachines()
+		if err != nil {
+			return job, ownFault(err)
+		}
+		if job.Machine, err = machines.Open(k.Machine); err != nil {
+			return job, inputFault(err)
+		}
+	}
+	if k.Gears != "" {
+		for text := range strings.SplitSeq(k.Gears, ",") {
+			n, err := strconv.Atoi(strings.TrimSpace(text))
+			if err != nil || n < 3 || n > 1000 {
+				return job, commandFaultf("--gears %q: %q is no gear; give numbers of teeth, 3 to 1000, with commas between", k.Gears, text)
+			}
+			job.Gears = append(job.Gears, n)
+		}
+	}
+	if k.LeaveOut != "" {
+		parts, err := words("--leave-out", k.LeaveOut, "angles", "indices", "stops")
+		if err != nil {
+			return job, err
+		}
+		job.LeaveOut = sheet.LeaveOut{
+			Angles:  slices.Contains(parts, "angles"),
+			Indices: slices.Contains(parts, "indices"),
+			Stops:   slices.Contains(parts, "stops"),
+		}
+	}
+	job.Date, err = sourceDate()
+	return job, err
+}
+
+// words reads a list of words with commas between, each one of the known ones.
+func words(flag, list string, known ...string) ([]string, error) {
+	var all []string
+	for word := range strings.SplitSeq(list, ",") {
+		word = strings.TrimSpace(word)
+		if !slices.Contains(known, word) {
+			return nil, commandFaultf("%s %q: %q is not known; use %s", flag, list, word, strings.Join(known, ", "))
+		}
+		if !slices.Contains(all, word) {
+			all = append(all, word)
+		}
+	}
+	return all, nil
+}
+
+// sourceDate returns the date that reproducible builds ask for, the zero date without
+// one. Source: reproducible-builds.org, SOURCE_DATE_EPOCH specification 1.1.
+func sourceDate() (time.Time, error) {
+	text, ok := os.LookupEnv("SOURCE_DATE_EPOCH")
+	if !ok || text == "" {
+		return time.Time{}, nil
+	}
+	seconds, err := strconv.ParseInt(text, 10, 64)
+	if err != nil || seconds < 0 {
+		return time.Time{}, commandFaultf("SOURCE_DATE_EPOCH %q is no number of seconds since 1970; mend or unset it", text)
+	}
+	return time.Unix(seconds, 0).UTC(), nil
+}
+
+// programVersion returns the program's name and version as sheets print it.
+func programVersion() string {
+	version := "development build"
+	if info, ok := debug.ReadBuildInfo(); ok && info.Main.Version != "" && info.Main.Version != "(devel)" {
+		version = info.Main.Version
+	}
+	return "Pavilight " + version
+}
+
+// plans reads the plans and finds their materials. All faults are told at once.
+func (k *cutCommand) plans() (plans []*facets.Plan, materials []*gems.Material, err error) {
+	if err := k.oneSource(); err != nil {
+		return nil, nil, err
+	}
+	if k.Round != "" || k.Outline != "" {
+		return nil, nil, commandFaultf("measured proportions give a shape but no order of cutting; cut needs a PLAN")
+	}
+	paths := k.More
+	if k.Plan != "" {
+		paths = append([]string{k.Plan}, k.More...)
+	}
+	var faults facets.Faults
+	add := func(plan *facets.Plan, err error) error {
+		var fs facets.Faults
+		switch {
+		case errors.As(err, &fs):
+			faults = append(faults, fs...)
+			return nil
+		case err != nil:
+			return err
+		}
+		if k.Width != 0 {
+			plan.WidthMM = k.Width
+		}
+		material, err := k.materialOf(plan)
+		if err != nil && k.Material != "" {
+			return err
+		}
+		if err != nil {
+			faults = append(faults, materialFault(plan, err))
+		}
+		plans, materials = append(plans, plan), append(materials, material)
+		return nil
+	}
+	if len(paths) == 0 {
+		if err := add(bundled()); err != nil {
+			return nil, nil, err
+		}
+	}
+	for _, path := range paths {
+		switch extension := strings.ToLower(filepath.Ext(path)); {
+		case extension == ".toml":
+			err = add(facets.OpenPlan(path))
+		case isStoneFile(path):
+			err = inputFault(facets.Faults{{File: path, Why: "a scan has a shape but no order of cutting", Remedy: "name a plan (.toml)"}})
+		default:
+			other := subjectFlags{Plan: path}
+			err = add(nil, other.neither())
+		}
+		if err != nil {
+			return nil, nil, err
+		}
+	}
+	if len(faults) > 0 {
+		return nil, nil, inputFault(faults)
+	}
+	return plans, materials, nil
+}
+
+// The light on a sheet: small maps, and a ledger to three decimals.
+const (
+	sheetPixels = 160
+	sheetError  = 0.001
+)
+
+// light traces the small maps.
+func (k *cutCommand) light(c call, plan *facets.Plan, m *gems.Material, media []*gems.Material, report func(*trace.Result)) (*trace.Result, error) {
+	stone, err := plan.Solve()
+	if err != nil {
+		return nil, inputFault(err)
+	}
+	result, err := trace.Run(c, trace.Scene{Stone: stone, Material: m, Surroundings: trace.Around(media...)}, trace.Settings{
+		Head: facets.Angle(k.Head) * facets.Degree, Pixels: sheetPixels, Error: sheetError, Seed: 1,
+	}, report)
+	var outside *gems.RangeError
+	if errors.As(err, &outside) {
+		return nil, inputFault(fmt.Errorf("%s: the maps cannot be traced: %w; or leave them out with --no-maps", plan.File, err))
+	}
+	return result, err
+}
+
+// newSheet works a job out; faults are the input's.
+func newSheet(job sheet.Job) (*sheet.Sheet, error) {
+	s, err := sheet.New(job)
+	var faults facets.Faults
+	if errors.As(err, &faults) {
+		return nil, inputFault(err)
+	}
+	return s, err
+}
+
+// madeFile is a file to be written.
+type madeFile struct {
+	name    string
+	content []byte
+}
+
+// documents sets the sheets into files: one document, or a pupil's and a teacher's.
+func (k *cutCommand) documents(sheets []*sheet.Sheet, kinds []string) (files []madeFile, pages int, err error) {
+	base := sheets[0].FileName()
+	if len(sheets) > 1 {
+		base += "-booklet"
+	}
+	add := func(name string, sheets []*sheet.Sheet) error {
+		d, err := k.document(sheets)
+		if err != nil {
+			return err
+		}
+		pages += len(d.Pages)
+		made, err := inKinds(d, name, kinds)
+		files = append(files, made...)
+		return err
+	}
+	if !sheets[0].LeaveOut.Any() {
+		err = add(base, sheets)
+		return files, pages, err
+	}
+	for _, copies := range []struct {
+		suffix, words string
+		leaveOut      sheet.LeaveOut
+	}{
+		{"-pupil", "pupil's copy", sheets[0].LeaveOut},
+		{"-teacher", "teacher's copy", sheet.LeaveOut{}},
+	} {
+		var changed []*sheet.Sheet
+		for _, s := range sheets {
+			one := *s
+			one.LeaveOut, one.Copy = copies.leaveOut, copies.words
+			changed = append(changed, &one)
+		}
+		if err := add(base+copies.suffix, changed); err != nil {
+			return nil, 0, err
+		}
+	}
+	return files, pages, nil
+}
+
+func (k *cutCommand) document(sheets []*sheet.Sheet) (*drawing.Document, error) {
+	if len(sheets) > 1 {
+		return sheet.Booklet(k.Title, sheets)
+	}
+	return sheets[0].Document()
+}
+
+// inKinds puts a document out in each of the kinds asked for.
+func inKinds(d *drawing.Document, name string, kinds []string) (files []madeFile, err error) {
+	const perMM = 150 / 25.4 // 150 dots an inch
+	for _, kind := range kinds {
+		if kind == "pdf" {
+			var b bytes.Buffer
+			if err := d.PDF(&b); err != nil {
+				return nil, err
+			}
+			files = append(files, madeFile{name + ".pdf", b.Bytes()})
+			continue
+		}
+		for i, page := range d.Pages {
+			var b bytes.Buffer
+			if kind == "svg" {
+				err = page.SVG(&b)
+			} else {
+				err = png.Encode(&b, page.Raster(perMM))
+			}
+			if err != nil {
+				return nil, err
+			}
+			files = append(files, madeFile{fmt.Sprintf("%s-%d.%s", name, i+1, kind), b.Bytes()})
+		}
+	}
+	return files, nil
+}
+
+func newCutSheet(s *sheet.Sheet) cutSheet {
+	out := cutSheet{
+		Plan: s.Plan.Name, Material: s.Material.Key, WidthMM: s.Measures.WidthMM,
+		Machine: s.Machine.Name, Gear: s.Machine.Gear, LightModel: s.LightModel,
+	}
+	if carats, ok := s.Carats(s.Measures.VolumeMM3); ok {
+		out.Carats = &carats
+	}
+	for i := range s.Rows {
+		r := &s.Rows[i]
+		step := cutStep{
+			Tier: r.Tier.Name, ToLap: r.Facing.String(), AngleDeg: r.Solved.Angle.Degrees(), SetDeg: r.Reading.Degrees(),
+			Stop: r.Stop, RemovedMM3: r.Step.Removed, LayerMM: r.Step.Depth,
+		}
+		for _, set := range r.Settings {
+			step.Set = append(step.Set, set.String())
+		}
+		out.Steps = append(out.Steps, step)
+	}
+	return out
+}
+
+func printCut(w io.Writer, r *cutResult) {
+	for i := range r.Sheets {
+		s := &r.Sheets[i]
+		weight := "weight not known"
+		if s.Carats != nil {
+			weight = fmt.Sprintf("%.2f ct", *s.Carats)
+		}
+		fmt.Fprintf(w, "%s: %s, %.2f mm wide, %s; %d steps on a gear of %d, %s\n",
+			s.Plan, s.Material, s.WidthMM, weight, len(s.Steps), s.Gear, s.Machine)
+	}
+	fmt.Fprintf(w, "%d pages written: %s\n", r.Pages, strings.Join(r.Files, " "))
+}
