@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"math/bits"
 
 	"pavilight/facets"
 )
@@ -48,12 +49,13 @@ type Seen struct {
 // LookAt averages pictures to what an eye tells apart from a distance in mm: each pixel
 // of the stone takes the mean over the part of the stone within half a minute of
 // arc. inside tells which pixels show the stone. Where a single picture has pixels
-// about which it says nothing, pictures are joined; at least 4 must be left.
+// about which it says nothing, pictures are joined; at least 4 must be left. A power of two is
+// measured, 64 at most; the others join them.
 func LookAt(pictures []*Picture, inside []bool, distance float64) (*Seen, error) {
 	if err := checkPictures(pictures, inside, distance); err != nil {
 		return nil, err
 	}
-	for n := len(pictures); n >= leastPictures; n /= 2 {
+	for n := mostTogether(len(pictures)); n >= leastPictures; n /= 2 {
 		if s := average(pictures, n, inside, distance); s != nil {
 			return s, nil
 		}
@@ -62,6 +64,9 @@ func LookAt(pictures []*Picture, inside []bool, distance float64) (*Seen, error)
 }
 
 var errFewRays = errors.New("too few rays to measure the picture as an eye sees it; trace more samples a pixel, or fewer pixels")
+
+// mostTogether returns the largest power of two, up to 64, that is no more than n.
+func mostTogether(n int) int { return min(1<<(bits.Len(uint(n))-1), 64) }
 
 // checkPictures checks that pictures are of one size and fine enough.
 func checkPictures(pictures []*Picture, inside []bool, distance float64) error {
@@ -137,16 +142,35 @@ func joinPictures(pictures []*Picture, g, n int) *Picture {
 	return sum
 }
 
-// eyeKernel is the eye's disc on the grid of pixels: the share of each pixel that it
-// covers, in a square of reach pixels to each side.
+// eyeKernel is the eye's disc on the grid of pixels: the share of each pixel that a
+// disc covers, in a square of reach pixels to each side.
+//
+// A pixel already is a mean over its square, and weighing whole pixels by their cover
+// blurs further. The disc is made smaller so that all together spread light as far, by
+// the second moment, as the eye's disc alone.
 type eyeKernel struct {
 	reach int
 	cover []float64
 }
 
+// newEyeKernel takes the diameter of the eye's disc in pixels, at least discPixels.
 func newEyeKernel(diameter float64) *eyeKernel {
-	radius := diameter / 2
-	k := &eyeKernel{reach: int(math.Ceil(radius - 0.5))}
+	// Along each axis a disc spreads light by radius²/4, a pixel by 1/12.
+	spread := diameter*diameter/16 - 1.0/12
+	lo, hi := 0.0, diameter/2
+	for range 30 {
+		if middle := (lo + hi) / 2; coverBy(middle).spread() < spread {
+			lo = middle
+		} else {
+			hi = middle
+		}
+	}
+	return coverBy(hi)
+}
+
+// coverBy covers pixels by a disc about the middle of one, of a radius in pixels.
+func coverBy(radius float64) *eyeKernel {
+	k := &eyeKernel{reach: int(math.Ceil(max(radius-0.5, 0)))}
 	const fine = 32 // parts of a pixel's edge
 	for y := -k.reach; y <= k.reach; y++ {
 		for x := -k.reach; x <= k.reach; x++ {
@@ -164,6 +188,23 @@ func newEyeKernel(diameter float64) *eyeKernel {
 		}
 	}
 	return k
+}
+
+// spread is the mean square distance of the kernel's pixels from its middle, along
+// one axis.
+func (k *eyeKernel) spread() float64 {
+	sum, total, i := 0.0, 0.0, 0
+	for range 2*k.reach + 1 {
+		for x := -k.reach; x <= k.reach; x++ {
+			sum += k.cover[i] * float64(x*x)
+			total += k.cover[i]
+			i++
+		}
+	}
+	if total == 0 {
+		return 0
+	}
+	return sum / total
 }
 
 // mean returns the mean over the rays within the disc about a pixel. ok is false where

@@ -2,6 +2,8 @@ package trace
 
 import (
 	"errors"
+	"math"
+	"math/bits"
 	"slices"
 )
 
@@ -15,21 +17,25 @@ func (s *Seen) Distance() float64 { return s.distance }
 // Luminance returns the stone's mean luminance relative to the white diffuser's.
 func (s *Seen) Luminance() Estimate {
 	means := averages(s.each(func(xyz [3]float64) float64 { return xyz[1] }))
-	return jackknife(len(means), func(without int) float64 { return meanWithout(means, without) })
+	e, _ := halved(len(means), func(of set) float64 { return meanOf(means, of) })
+	return e
 }
 
 // DarkArea returns the share of the stone whose luminance is under a tenth of the white
-// diffuser's.
+// diffuser's. Noise moves places over that line; what it is found to add is taken off, but
+// counts as an error in full, since it is itself known no better.
 func (s *Seen) DarkArea() Estimate {
-	return jackknife(len(s.averaged), func(without int) float64 {
+	e, noise := halved(len(s.averaged), func(of set) float64 {
 		dark := 0
-		for i := range s.places {
-			if s.at(i, without)[1] < darkBelow {
+		for _, xyz := range s.mean(of) {
+			if xyz[1] < darkBelow {
 				dark++
 			}
 		}
 		return float64(dark) / float64(len(s.places))
 	})
+	e.Error = math.Hypot(e.Error, noise)
+	return e
 }
 
 // Contrast returns the root mean square of the luminance about its mean, over the mean.
@@ -44,13 +50,14 @@ func (s *Seen) Contrast() Estimate {
 		ofMeans[i] = []float64{m}
 	}
 	squaredMeans := newPairs(ofMeans)
-	return jackknife(len(means), func(without int) float64 {
-		m := squaredMeans.mean(without)
+	square, _ := halved(len(means), func(of set) float64 {
+		m := squaredMeans.mean(of)
 		if m <= 0 {
 			return 0 // a black stone has no contrast
 		}
-		return squares.mean(without)/m - 1
-	}).root()
+		return squares.mean(of)/m - 1
+	})
+	return square.root()
 }
 
 // Fire returns how far the colours in the stone lie apart: the luminance-weighted root
@@ -58,10 +65,11 @@ func (s *Seen) Contrast() Estimate {
 // mean light. It tells stones apart only under lights whose Small is set. The definition
 // is ours; the chromaticity is that of CIE 015:2018.
 func (s *Seen) Fire() Estimate {
-	return jackknife(len(s.averaged), func(without int) float64 {
+	square, _ := halved(len(s.averaged), func(of set) float64 {
+		seen := s.mean(of)
 		var total [3]float64
-		for i := range s.places {
-			for c, v := range s.at(i, without) {
+		for _, xyz := range seen {
+			for c, v := range xyz {
 				total[c] += v
 			}
 		}
@@ -70,14 +78,14 @@ func (s *Seen) Fire() Estimate {
 			return 0 // a black stone has no fire
 		}
 		sum := 0.0
-		for i := range s.places {
-			xyz := s.at(i, without)
+		for _, xyz := range seen {
 			if u, v, ok := UniformChromaticity(xyz); ok {
 				sum += xyz[1] * ((u-u0)*(u-u0) + (v-v0)*(v-v0))
 			}
 		}
 		return sum / total[1]
-	}).root()
+	})
+	return square.root()
 }
 
 // Sparkle returns the root mean square, over the places where both views show the stone,
@@ -99,7 +107,7 @@ func Sparkle(first, second []*Picture, insideFirst, insideSecond []bool, distanc
 	if err := checkPictures(slices.Concat(first, second), both, distance); err != nil {
 		return Estimate{}, err
 	}
-	for n := len(first); n >= leastPictures; n /= 2 {
+	for n := mostTogether(len(first)); n >= leastPictures; n /= 2 {
 		a, b := average(first, n, both, distance), average(second, n, both, distance)
 		if a == nil || b == nil {
 			continue
@@ -110,25 +118,25 @@ func Sparkle(first, second []*Picture, insideFirst, insideSecond []bool, distanc
 				change[g][i] -= b.averaged[g][i][1]
 			}
 		}
-		return jackknife(n, newPairs(change).mean).root(), nil
+		square, _ := halved(n, newPairs(change).mean)
+		return square.root(), nil
 	}
 	return Estimate{}, errFewRays
 }
 
-// at returns the mean of all pictures, or of all but one, at a place.
-func (s *Seen) at(place, without int) (mean [3]float64) {
-	count := 0.0
-	for g := range s.averaged {
-		if g == without {
+// mean returns the mean of a set of pictures, place by place.
+func (s *Seen) mean(of set) [][3]float64 {
+	mean := make([][3]float64, len(s.places))
+	share := 1 / float64(bits.OnesCount64(uint64(of)))
+	for g, picture := range s.averaged {
+		if !of.has(g) {
 			continue
 		}
-		count++
-		for c, v := range s.averaged[g][place] {
-			mean[c] += v
+		for i := range mean {
+			for c, v := range picture[i] {
+				mean[i][c] += share * v
+			}
 		}
-	}
-	for c := range mean {
-		mean[c] /= count
 	}
 	return mean
 }
@@ -156,11 +164,11 @@ func averages(pictures [][]float64) []float64 {
 	return means
 }
 
-// meanWithout returns the mean of all numbers but one.
-func meanWithout(numbers []float64, without int) float64 {
+// meanOf returns the mean of a set of numbers.
+func meanOf(numbers []float64, of set) float64 {
 	sum, count := 0.0, 0.0
 	for i, v := range numbers {
-		if i != without {
+		if of.has(i) {
 			sum += v
 			count++
 		}
