@@ -243,37 +243,77 @@ func TestCornersAreKept(t *testing.T) {
 	}
 }
 
-// The tangent rule of cutters: to change one side's angles and keep the plan
-// view, multiply all tangents by one number. It is a stretch along z.
-func TestTangentRatio(t *testing.T) {
-	p, before := solveFile(t, "../testdata/plans/round.toml")
-	k := math.Tan(39*degree) / math.Tan(41.5*degree)
-	q := p.Clone()
-	for i := range q.Tiers {
-		tier := &q.Tiers[i]
-		if tier.Side == Pavilion {
-			tier.Angle = Angle(math.Atan(k * math.Tan(tier.Angle.Radians())))
-			tier.Stop.Value *= k // the mains' centre point; the others meet
+// The tangent rule of cutters: to change one side's angles and keep the view
+// from above, multiply all tangents by one number; it is a stretch along z.
+// All that a stretch keeps is kept: the other side, every facet's area seen from above, the corners; heights
+// and volume of the side grow by the ratio.
+func TestStretched(t *testing.T) {
+	for _, file := range planFiles(t) {
+		p, before := solveFile(t, file)
+		a := before.Stone.Measure()
+		if a.GirdleHeightMM.Max-a.GirdleHeightMM.Min != 0 && a.GirdleMM.Max-a.GirdleMM.Min > 1e-9 || a.Ratio > 2 {
+			continue // a scalloped rim lies on both sides of the plane that stays, the prism and the rod have no sides
+		}
+		for _, side := range []Side{Pavilion, Crown} {
+			for _, ratio := range []float64{0.93, 1.04} {
+				q, err := p.Stretched(side, ratio)
+				if err != nil {
+					t.Errorf("%s: %v", file, err)
+					continue
+				}
+				sol, err := q.Solution()
+				if err != nil {
+					t.Errorf("%s, %v × %g: %v", file, side, ratio, err)
+					continue
+				}
+				b := sol.Stone.Measure()
+				crown, pavilion := 1.0, ratio
+				if side == Crown {
+					crown, pavilion = ratio, 1
+				}
+				closeTo(t, file+": crown height", b.CrownHeightMM, crown*a.CrownHeightMM, 1e-9, "stretch")
+				closeTo(t, file+": pavilion depth", b.PavilionDepthMM, pavilion*a.PavilionDepthMM, 1e-9, "stretch")
+				closeTo(t, file+": girdle", b.GirdleMM.Max, a.GirdleMM.Max, 1e-9, "the rim stays")
+				for i := range p.Tiers {
+					closeTo(t, file+": "+p.Tiers[i].Name+" seen from above", sol.Stone.seenArea(p.Tiers[i].Name),
+						before.Stone.seenArea(p.Tiers[i].Name), 1e-8, "the view from above stays")
+				}
+				if len(sol.Stone.Corners) != len(before.Stone.Corners) || len(sol.Stone.Edges) != len(before.Stone.Edges) {
+					t.Errorf("%s, %v × %g: corners or edges changed", file, side, ratio)
+				}
+			}
 		}
 	}
-	sol, err := q.Solution()
+	p, _ := solveFile(t, "../testdata/plans/round.toml")
+	// Examples printed with the rule in the trade: from 43 to 41 takes 44.5 to
+	// 42.492; from 42 to 37 takes 47 to 41.907 and 27 to 23.095.
+	set := map[string]float64{"P1": 43, "P2": 44.5, "C2": 42, "C1": 47, "C3": 27}
+	for i := range p.Tiers {
+		if a, ok := set[p.Tiers[i].Name]; ok {
+			p.Tiers[i].Angle = Angle(a) * Degree
+		}
+	}
+	q, err := p.Stretched(Pavilion, math.Tan(41*degree)/math.Tan(43*degree))
 	if err != nil {
 		t.Fatal(err)
 	}
-	a, b := before.Stone.Measure(), sol.Stone.Measure()
-	low := p.Tiers[0].Stop.Value * before.Scale // depth of the culet below z = 0
-	closeTo(t, "culet depth", sol.Stone.lowest(), -k*low, 1e-12, "affine stretch of the pavilion by k")
-	closeTo(t, "width", b.WidthMM, a.WidthMM, 1e-12, "the plan view is kept")
-	closeTo(t, "lower halves' area seen from above", sol.Stone.seenArea("P2"), before.Stone.seenArea("P2"), 1e-12, "the plan view is kept")
-}
-
-// lowest returns the lowest corner's z.
-func (s *Stone) lowest() float64 {
-	z := math.Inf(1)
-	for _, c := range s.Corners {
-		z = math.Min(z, c[2])
+	if q, err = q.Stretched(Crown, math.Tan(37*degree)/math.Tan(42*degree)); err != nil {
+		t.Fatal(err)
 	}
-	return z
+	want := map[string]float64{"P1": 41, "P2": 42.492, "C2": 37, "C1": 41.907, "C3": 23.095}
+	for i := range q.Tiers {
+		if w, ok := want[q.Tiers[i].Name]; ok && math.Abs(q.Tiers[i].Angle.Degrees()-w) > 5e-4 {
+			t.Errorf("%s became %v, want %g° (printed to a thousandth)", q.Tiers[i].Name, q.Tiers[i].Angle.Degrees(), w)
+		}
+	}
+	for _, bad := range []float64{0, -1, math.NaN(), math.Inf(1)} {
+		if _, err := p.Stretched(Crown, bad); err == nil {
+			t.Errorf("a stretch by %g passed", bad)
+		}
+	}
+	if _, err := p.Stretched(Girdle, 1.1); err == nil {
+		t.Error("a stretched girdle passed")
+	}
 }
 
 // seenArea returns the area of a tier's facets projected along z.
