@@ -63,7 +63,9 @@ type run struct {
 	rays   int
 	error  float64 // largest standard error of any ledger entry
 
-	pixelsInside float64 // how many pixels show the stone
+	pixelsInside float64   // how many pixels show the stone
+	symmetry     *symmetry // nil where the whole picture must be traced
+	images       int       // that each ray has in the map, itself included
 }
 
 // columnState is what one surrounding has gathered.
@@ -104,6 +106,10 @@ func newRun(scene Scene, settings Settings) (*run, error) {
 	for i := range r.points {
 		r.points[i] = newPoints(settings.Seed, i)
 	}
+	r.images = 1
+	if s := r.tracer.symmetry(scene.Stone, scene.byTier()); s.images() > 1 && settings.Light == nil {
+		r.symmetry, r.images = &s, s.images()
+	}
 	inside := r.tracer.mask(settings.Pixels)
 	for _, in := range inside {
 		if in {
@@ -129,11 +135,11 @@ func (r *run) finished() bool {
 	if r.rays == 0 {
 		return false
 	}
-	pixels := r.pixelsInside
+	rays, pixels := float64(r.rays*r.images), r.pixelsInside
 	if r.settings.Samples > 0 {
-		return float64(r.rays) >= float64(r.settings.Samples)*pixels
+		return rays >= float64(r.settings.Samples)*pixels
 	}
-	return r.error < r.settings.Error && float64(r.rays) >= leastRays*pixels
+	return r.error < r.settings.Error && rays >= leastRays*pixels
 }
 
 // done estimates the share of the work that is done. The error of scrambled
@@ -142,11 +148,11 @@ func (r *run) done() float64 {
 	if r.finished() {
 		return 1
 	}
-	pixels := r.pixelsInside
+	rays, pixels := float64(r.rays*r.images), r.pixelsInside
 	if r.settings.Samples > 0 {
-		return float64(r.rays) / (float64(r.settings.Samples) * pixels)
+		return rays / (float64(r.settings.Samples) * pixels)
 	}
-	return min(math.Pow(r.settings.Error/r.error, 4.0/3), float64(r.rays)/(leastRays*pixels), 0.99)
+	return min(math.Pow(r.settings.Error/r.error, 4.0/3), rays/(leastRays*pixels), 0.99)
 }
 
 // pass traces further points of every scrambling: as many as there are already,
@@ -201,6 +207,7 @@ func (r *run) pass(ctx context.Context) error {
 type chunk struct {
 	unit, scrambling int
 	entries          []entry
+	pixels           []int32     // of each entry's images
 	ledgers          [][]Ledger  // by column, of each entry
 	lit              [][]float64 // likewise the luminance seen, where colour is gathered
 	sums             []sums      // by column
@@ -210,7 +217,6 @@ type chunk struct {
 type entry struct {
 	point      uint32 // number of its sample point
 	facet      int32
-	pixel      int32
 	at, along  vec
 	wavelength gems.Wavelength
 	xyz        [3]float64 // how the wavelength counts for X, Y and Z; Y is the ray's weight in every mean
@@ -221,8 +227,9 @@ func (r *run) trace(unit, scrambling, number int) *chunk {
 	c := &chunk{unit: unit, scrambling: scrambling, sums: make([]sums, len(r.columns))}
 	points := r.points[scrambling]
 	for i := uint32(number * chunkPoints); i < uint32((number+1)*chunkPoints); i++ {
-		if e, ok := r.enter(points, i); ok {
+		if e, u, v, ok := r.enter(points, i); ok {
 			c.entries = append(c.entries, e)
+			c.pixels = r.appendPixels(c.pixels, u, v)
 		}
 	}
 	c.ledgers, c.lit = make([][]Ledger, len(r.columns)), make([][]float64, len(r.columns))
@@ -245,16 +252,20 @@ func (r *run) trace(unit, scrambling, number int) *chunk {
 	return c
 }
 
-// enter makes sample point i an entry; ok is false where it passes beside the stone.
-func (r *run) enter(points points, i uint32) (e entry, ok bool) {
+// enter makes sample point i an entry, at (u, v) of the picture; ok is false where it
+// passes beside the stone.
+func (r *run) enter(points points, i uint32) (e entry, u, v float64, ok bool) {
 	px, py, pw := points.at(i)
-	o, pixels := r.tracer.outline, r.settings.Pixels
-	facet, x, d, ok := r.tracer.arrive((2*px-1)*o.half, (2*py-1)*o.half)
+	if r.symmetry != nil {
+		u, v = r.symmetry.place(px, py)
+	} else {
+		u, v = (2*px-1)*r.tracer.outline.half, (2*py-1)*r.tracer.outline.half
+	}
+	facet, x, d, ok := r.tracer.arrive(u, v)
 	if !ok {
-		return entry{}, false
+		return entry{}, 0, 0, false
 	}
 	e = entry{point: i, facet: int32(facet), at: x, along: d, xyz: [3]float64{1, 1, 1}}
-	e.pixel = int32((pixels-1-int(py*float64(pixels)))*pixels + int(px*float64(pixels)))
 	switch {
 	case r.settings.Wavelength != 0:
 		e.wavelength = r.settings.Wavelength
@@ -263,7 +274,23 @@ func (r *run) enter(points points, i uint32) (e entry, ok bool) {
 	default:
 		e.wavelength = gems.SpectrumWavelength(pw)
 	}
-	return e, true
+	return e, u, v, true
+}
+
+// appendPixels appends the pixels in which (u, v) of the picture and its images lie.
+func (r *run) appendPixels(pixels []int32, u, v float64) []int32 {
+	k, n := float64(r.settings.Pixels)/(2*r.tracer.outline.half), r.settings.Pixels
+	for i := range r.images {
+		iu, iv := u, v
+		if i > 0 {
+			iu, iv = r.symmetry.image(u, v, i)
+		}
+		column, row := int((r.tracer.outline.half+iu)*k), int((r.tracer.outline.half+iv)*k)
+		// Images may round across the picture's edge.
+		column, row = max(0, min(column, n-1)), max(0, min(row, n-1))
+		pixels = append(pixels, int32((n-1-row)*n+column))
+	}
+	return pixels
 }
 
 // plainRays appends a column's rays for the plain tracer. All indices are known to
@@ -306,9 +333,11 @@ func (r *run) add(c *chunk) {
 		col.scrambled[c.scrambling].add(&c.sums[k])
 		for i := range c.entries {
 			e := &c.entries[i]
-			col.mapped.add(int(e.pixel), e.xyz[1], &c.ledgers[k][i])
-			if r.settings.Colour {
-				col.mapped.addColour(int(e.pixel), c.lit[k][i], e.xyz)
+			for _, pixel := range c.pixels[i*r.images : (i+1)*r.images] {
+				col.mapped.add(int(pixel), e.xyz[1], &c.ledgers[k][i])
+				if r.settings.Colour {
+					col.mapped.addColour(int(pixel), c.lit[k][i], e.xyz)
+				}
 			}
 		}
 	}

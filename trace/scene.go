@@ -80,6 +80,16 @@ func (s Scene) plain(k int, settings Settings) bool {
 		s.Material.Absorption == nil && settings.Light == nil && settings.Distance == 0 && !settings.Colour && !settings.Paths
 }
 
+// byTier reports whether it matters which tier a facet belongs to.
+func (s Scene) byTier() bool {
+	for _, around := range s.Surroundings {
+		if len(around.Tiers) > 0 {
+			return true
+		}
+	}
+	return len(s.Coatings) > 0
+}
+
 // check refuses a scene that means nothing.
 func (s Scene) check() error {
 	share := func(name string, v float64) error {
