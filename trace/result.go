@@ -21,6 +21,7 @@ type Column struct {
 	IndexMedium   float64      // likewise
 	Critical      facets.Angle // at those indices; meaningful only if HasCritical
 	HasCritical   bool         // false where the stone is not the denser side
+	Limits        []Limit      // of a stone traced as doubly refracting, at the lower principal index, then at the higher; else nil
 	Ledger        Ledger       // means over the outline as seen
 	StandardError Ledger       // of those means, from independent scramblings
 	Lit           Lit
@@ -43,4 +44,12 @@ type Lit struct {
 	Returned float64 `json:"returned"`
 	Leaked   float64 `json:"leaked"`
 	Sum      float64 `json:"sum"`
+}
+
+// Limit is the critical angle at one principal index of a doubly refracting stone.
+// The lower index has the larger critical angle, on which warnings rest.
+type Limit struct {
+	Index       float64
+	Critical    facets.Angle // inside the stone, from the normal; meaningful only if HasCritical
+	HasCritical bool         // false where the stone is not the denser side
 }

@@ -377,6 +377,14 @@ func (r *run) result() *Result {
 		copy(c.From[:], mean[firstFrom:])
 		copy(c.FromError[:], se[firstFrom:])
 		c.Critical, c.HasCritical = CriticalAngle(c.IndexStone, c.IndexMedium)
+		if r.scene.double() {
+			p, _ := r.scene.Material.Indices(shown)
+			for _, n := range []float64{p.Least(), p.Greatest()} {
+				l := Limit{Index: n}
+				l.Critical, l.HasCritical = CriticalAngle(n, c.IndexMedium)
+				c.Limits = append(c.Limits, l)
+			}
+		}
 		res.Columns = append(res.Columns, c)
 	}
 	return res

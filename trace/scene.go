@@ -6,18 +6,32 @@ import (
 	"math"
 	"slices"
 
+	"github.com/go-gl/mathgl/mgl64"
+
 	"pavilight/facets"
 	"pavilight/gems"
 )
 
 // Scene is one stone and what it is traced in.
 type Scene struct {
-	Stone        *facets.Stone
-	Material     *gems.Material // what the stone is made of; its body colour counts
-	Surroundings []Surrounding  // one column each
-	Coatings     []Coating      // films on some tiers
-	Ground       *Ground        // something diffuse under the stone; nil for nothing
-	Setting      *Setting       // something diffuse behind the pavilion; nil for nothing
+	Stone    *facets.Stone
+	Material *gems.Material // what the stone is made of; its body colour counts
+
+	// Axis is the direction of the optic axis in the stone's frame, of any length but 0.
+	// It counts for a uniaxial material, which then refracts doubly: both waves are
+	// followed, each along its own ray. The phase between the two is forgotten once they
+	// have parted, as it is lost in any picture wider than a hair of a stone thicker than
+	// some wavelengths over its birefringence; light close along the axis keeps it longer,
+	// and that is not modelled. With nil a uniaxial stone is traced as if singly
+	// refracting, at its ordinary index. Biaxial materials, which have two axes, are
+	// not followed doubly: an axis is refused for them. An isotropic one has none, and
+	// any axis leaves it as it is.
+	Axis *mgl64.Vec3
+
+	Surroundings []Surrounding // one column each
+	Coatings     []Coating     // films on some tiers
+	Ground       *Ground       // something diffuse under the stone; nil for nothing
+	Setting      *Setting      // something diffuse behind the pavilion; nil for nothing
 }
 
 // Surrounding is what lies around the stone. With a Medium alone, stone, lights and
@@ -72,11 +86,14 @@ type Setting struct {
 // decides where light that it sends back meets the stone again.
 const liquidAbove = 0.5
 
+// double reports whether the stone is followed as doubly refracting.
+func (s Scene) double() bool { return s.Axis != nil && s.Material.Character().Uniaxial() }
+
 // plain reports whether column k is clean facets in one clear medium, under the even
 // light, seen from afar: what the fast tracer knows.
 func (s Scene) plain(k int, settings Settings) bool {
 	around := s.Surroundings[k]
-	return !around.Dish && len(around.Tiers) == 0 && len(s.Coatings) == 0 && s.Ground == nil && s.Setting == nil &&
+	return !s.double() && !around.Dish && len(around.Tiers) == 0 && len(s.Coatings) == 0 && s.Ground == nil && s.Setting == nil &&
 		s.Material.Absorption == nil && settings.Light == nil && settings.Distance == 0 && !settings.Colour && !settings.Paths
 }
 
@@ -99,6 +116,9 @@ func (s Scene) check() error {
 		return fmt.Errorf("%s %v is outside 0 to 1", name, v)
 	}
 	var faults []error
+	if s.Axis != nil {
+		faults = append(faults, s.checkAxis())
+	}
 	if s.Ground != nil {
 		faults = append(faults, share("reflectance of the ground", s.Ground.Reflectance))
 	}
@@ -124,6 +144,22 @@ func (s Scene) check() error {
 		faults = append(faults, s.tiersExist("liquid", around.Tiers))
 	}
 	return errors.Join(faults...)
+}
+
+func (s Scene) checkAxis() error {
+	a := *s.Axis
+	switch l := a.Len(); {
+	case l == 0:
+		return errors.New("the optic axis has length zero: give it a direction, or leave it out")
+	case !(l > 0) || math.IsInf(l, 0):
+		return fmt.Errorf("the optic axis %v is no direction: give it finite numbers, or leave it out", a)
+	case s.Material.Character().Biaxial():
+		return fmt.Errorf("%s is biaxial, with two optic axes: light in it is not followed doubly; leave the axis out to "+
+			"trace it at its mean index", s.Material.Name)
+	case s.double() && len(s.Coatings) > 0:
+		return errors.New("a film on a doubly refracting stone is not followed: leave out the film or the optic axis")
+	}
+	return nil
 }
 
 func (s Scene) tiersExist(what string, tiers []string) error {
@@ -154,6 +190,10 @@ func (s Scene) known(w gems.Wavelength) error {
 func (s Scene) traveller(k int, settings Settings, plain *tracer) *traveller {
 	around := s.Surroundings[k]
 	t := &traveller{tracer: plain, colour: s.Material.Absorption, light: settings.Light, below: settings.Below}
+	if s.double() {
+		a := fromMgl(s.Axis.Normalize())
+		t.axis = &a
+	}
 	for _, f := range s.Stone.Facets {
 		medium := around.Medium
 		if len(around.Tiers) > 0 && !slices.Contains(around.Tiers, f.Tier) {

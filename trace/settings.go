@@ -11,6 +11,10 @@ import (
 
 // Settings say how a scene is viewed and how long it is traced. The zero value
 // is face-up, without a head, over the spectrum, at the defaults named below.
+//
+// Light in a doubly refracting stone is one wave or the other, each polarised in its
+// own way: there Averaged only averages the light outside, between the stone and a
+// dish's surface.
 type Settings struct {
 	View       View
 	Head       facets.Angle    // half-angle of the cone that the viewer's head blocks; 0 for none

@@ -19,6 +19,7 @@ import (
 type traveller struct {
 	*tracer
 	colour *gems.Absorption // nil for none
+	axis   *vec             // optic axis, unit; nil for a singly refracting stone
 
 	medium []*gems.Material // behind each facet
 	film   []*Film          // on each facet; nil for none
@@ -53,6 +54,8 @@ type leg struct {
 	x, d    vec
 	light   beam
 	inside  bool
+	k       vec     // wave vector inside a doubly refracting stone; d is then the ray
+	extra   bool    // there, the extraordinary wave
 	path    float64 // inside the stone so far, in units of the stone
 	mirror  bool    // only mirrored so far, by the first surface
 	seen    bool    // has met the pavilion
@@ -66,6 +69,7 @@ type lambda struct {
 	medium []float64 // behind each facet
 	liquid float64   // of the dish
 	absorb float64   // natural absorption per unit of the stone
+	twin   twin      // of a doubly refracting stone: meaningful only if the traveller has an axis
 }
 
 // look looks up all indices at w; every material is known to have one there.
@@ -85,7 +89,11 @@ func (t *traveller) look(w gems.Wavelength, stone *gems.Material, at *lambda) {
 	if t.dish != nil {
 		at.liquid, _ = t.dish.liquid.Index(w)
 	}
-	if t.colour != nil {
+	if t.axis != nil {
+		p, _ := stone.Indices(w)
+		o, e := t.colour.Coefficient(w)
+		at.twin = twin{newCrystal(*t.axis, p.Ordinary(), p.Extraordinary()), o * t.body.unit, e * t.body.unit}
+	} else if t.colour != nil {
 		o, e := t.colour.Coefficient(w)
 		at.absorb = (2*o + e) / 3 * t.body.unit // the mean over directions, to first order
 	}
@@ -99,6 +107,7 @@ type journey struct {
 	sums   *sums
 	dice   dice
 	stack  []leg
+	window float64 // what left downward where light first met the pavilion
 }
 
 // send sends one unit of viewing ray from x, on or outside the stone, along d. at
@@ -123,7 +132,9 @@ func (t *traveller) send(facet int, x, d vec, at *lambda, dice dice, sums *sums)
 	for len(j.stack) > 0 {
 		l := j.stack[len(j.stack)-1]
 		j.stack = j.stack[:len(j.stack)-1]
-		if l.inside {
+		if l.inside && j.axis != nil {
+			j.runDouble(l)
+		} else if l.inside {
 			j.run(l)
 		} else {
 			j.roam(l)
@@ -131,6 +142,9 @@ func (t *traveller) send(facet int, x, d vec, at *lambda, dice dice, sums *sums)
 	}
 	if j.ledger.Leaked > 0.5 {
 		sums[leakyArea]++
+	}
+	if j.window > 0.5 {
+		sums[windowedArea]++
 	}
 	return j.ledger
 }
@@ -154,6 +168,10 @@ func (j *journey) land(k int, l leg) {
 	if cosI <= 0 {
 		// Grazing within rounding: passes beside.
 		j.count(l, l.d)
+		return
+	}
+	if j.axis != nil {
+		j.landDouble(k, l)
 		return
 	}
 	c := j.crossing(k, cosI, false)
@@ -223,9 +241,7 @@ func (j *journey) run(l leg) {
 		j.settle(&reflected, &through)
 		if !l.seen && b.side[k] == facets.Pavilion {
 			l.seen = true
-			if through.i > 0.5 && out.dot(j.outline.eye) <= 0 {
-				j.sums[windowedArea]++
-			}
+			j.sees(through.i, out)
 		}
 		if through.i > 0 {
 			left := l
@@ -239,6 +255,13 @@ func (j *journey) run(l leg) {
 		l.d = l.d.plus(-2*cosI, v)
 	}
 	j.ledger.Unresolved += l.light.i
+}
+
+// sees notes what leaves along out where light first meets the pavilion.
+func (j *journey) sees(power float64, out vec) {
+	if power > 0 && out.dot(j.outline.eye) <= 0 {
+		j.window += power
+	}
 }
 
 // away lets a leg that has left the stone by facet k go on: the medium is endless,
