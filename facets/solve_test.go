@@ -66,6 +66,8 @@ func TestStopRules(t *testing.T) {
 			sin(20)*math.Sqrt2 + 0.2*cos(20), 20, "both neighbours are equally near and share the corner (1, 1, 0.2)"},
 		{"meet on the axis", block + tierText("Q", "pavilion", "angle = 40\nindex = [12, 36, 60, 84]\nmeet = [\"P\", \"axis\"]") + close, "Q",
 			cos(40), 40, "through the culet point (0, 0, -1)"},
+		{"meet where one plane pierces the axis", block + tierText("Q", "pavilion", "angle = 40\nindex = [12, 36, 60, 84]\nmeet = [\"P@24\", \"axis\"]") + close, "Q",
+			cos(40), 40, "the axis counts for two planes"},
 		{"table", block + tierText("C", "crown", "angle = 45\n"+fourWays+"level = 0.2") + tierText("T", "table", "table = 0.6"), "T",
 			0.2 + 0.4, 0, "a roof of 45 degrees from half width 1 to 0.6"},
 		{"culet", block + close + tierText("U", "pavilion", "culet = 0.1"), "U", 0.9, 0, "a roof of 45 degrees from half width 1 to 0.1"},
@@ -174,6 +176,18 @@ func TestMisses(t *testing.T) {
 			tierText("D", "crown", "index = [0]\nmeet = [[\"C@0\", \"C@24\", \"G@0\"], [\"C@0\", \"C@72\", \"G@0\"]]"), "D", "every angle fits"},
 		{"no corner at another index", block + tierText("C", "crown", "angle = 30\nindex = [0, 24, 48]\nlevel = 0.2") +
 			tierText("D", "crown", "angle = 20\nindex = [12, 66]\nmeet = [\"C\", \"G\"]") + table, "D", "the facet at index 66 finds no such corner"},
+		{"an edge with a level tier", block + table + tierText("C", "crown", "angle = 30\n"+fourWays+"edge = { with = \"T\", height = 0.2 }"),
+			"C", "that tier is level"},
+		{"an edge between equal slopes", block + crown + tierText("D", "crown", "angle = 30\n"+fourWays+"edge = { with = \"C\", height = 0.3 }") + table,
+			"D", "the same slope"},
+		{"an edge that would not be level", block + crown + tierText("D", "crown", "angle = 20\nindex = [12, 36, 60, 84]\nedge = { with = \"C\", height = 0.3 }") + table,
+			"D", "it has no facet at index 12"},
+		{"a facet that is gone", block + tierText("C", "crown", "angle = 30\n"+fourWays+"level = 0.2\ntemporary = true") + tierText("T", "table", "distance = 0.1") +
+			tierText("D", "crown", "angle = 20\nindex = 0\nmeet = [\"C@0\", \"T\", \"G@0\"]"), "D", "nothing of that facet is left"},
+		{"a tier that is gone", block + tierText("C", "crown", "angle = 30\n"+fourWays+"level = 0.2\ntemporary = true") + tierText("T", "table", "distance = 0.1") +
+			tierText("D", "crown", "angle = 20\nindex = 0\nmeet = [\"C\", \"T\", \"G\"]"), "D", "nothing of that tier is left"},
+		{"a girdle left over nothing", headOf + tierText("G", "girdle", fourWays+"distance = 1") + tierText("C", "crown", "angle = 30\n"+fourWays+"girdle = 0.1") + table,
+			"C", "the other side of the girdle is not cut yet"},
 		{"levels that differ", strings.Replace(oblong, "1.001", "1.1", 1) + tierText("C", "crown", "angle = 50\n"+fourWays+"level = 0.2"), "C", "misses its place by the rule level"},
 		{"a fully visible miss", strings.Replace(oblong, "1.001", "1.05", 1) + tierText("C", "crown", "angle = 50\n"+fourWays+"level = 0.2"), "C", "0.038 mm"},
 	} {
@@ -526,6 +540,7 @@ func TestSolveUnreadPlans(t *testing.T) {
 		{"edge with nothing", func(p *Plan) { p.Tiers[2].Stop = Stop{Rule: StopEdge} }},
 		{"no angle", func(p *Plan) { p.Tiers[1].HasAngle = false }},
 		{"no index", func(p *Plan) { p.Tiers[1].Index = nil }},
+		{"an upright crown with a centre point", func(p *Plan) { p.Tiers[2].Angle, p.Tiers[2].Stop = 90*Degree, Stop{Rule: StopCentre, Value: 1} }},
 		{"3,000 facets", func(p *Plan) { p.Tiers[1].Fold = 3000 }},
 		{"all angles zero", func(p *Plan) {
 			for i := range p.Tiers {
