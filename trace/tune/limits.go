@@ -18,36 +18,45 @@ type Breach struct {
 	Words string
 }
 
-// broken returns the limits that a stone of the material does not keep. ratio is the
-// length over width that is to be kept.
-func (l *Limits) broken(s *facets.Stone, m *facets.Measures, material *gems.Material, ratio float64) []Breach {
+// broken returns the limits that a stone does not keep. grown is by how much its volume
+// may grow until the rough holds it no more.
+func (l *Limits) broken(s *facets.Stone, m *facets.Measures, j *judge, grown float64) []Breach {
 	var bs []Breach
+	material, ratio := j.Material, j.ratio
 	atLeast := func(what string, got, want float64, unit string) {
 		if want > 0 && got < want {
-			bs = append(bs, Breach{(want - got) / want, fmt.Sprintf("%s is %.3g%s, less than %.3g%s", what, got, unit, want, unit)})
+			bs = append(bs, Breach{(want - got) / want, fmt.Sprintf("%s is %.4g%s, less than %.4g%s", what, got, unit, want, unit)})
 		}
 	}
 	atMost := func(what string, got, want float64, unit string) {
 		if want > 0 && got > want {
-			bs = append(bs, Breach{(got - want) / want, fmt.Sprintf("%s is %.3g%s, more than %.3g%s", what, got, unit, want, unit)})
+			bs = append(bs, Breach{(got - want) / want, fmt.Sprintf("%s is %.4g%s, more than %.4g%s", what, got, unit, want, unit)})
 		}
 	}
 	atLeast("the girdle", m.GirdleMM.Min, l.GirdleMM, " mm")
 	atMost("the depth", m.DepthPercent, l.MostDepthPercent, " %")
 	atMost("the crown", m.CrownHeightPercent, l.MostCrownPercent, " %")
-	atLeast("the weight", m.Carats(material.Density), l.LeastCarats, " ct")
-	atLeast("the narrowest facet", m.SmallestFacetMM, l.LeastFacetMM, " mm")
+	atLeast("the weight", m.Carats(material.Density)*grown, l.LeastCarats, " ct")
+	if j.Rough != nil {
+		atLeast("the yield", m.VolumeMM3*grown/j.Rough.VolumeMM3(), l.LeastYield, "")
+	}
+	if l.LeastFacetMM > 0 {
+		f, width := narrowest(s)
+		atLeast("the narrowest facet, "+facetName(s.Facets[f])+",", width, l.LeastFacetMM, " mm")
+	}
 	if l.KeepRatio > 0 && ratio > 0 {
-		atMost("the change of length over width", math.Abs(m.Ratio/ratio-1), l.KeepRatio, "")
+		atMost("the change of length over width, as a share,", math.Abs(m.Ratio/ratio-1), l.KeepRatio, "")
 	}
 	if l.MarginIn != nil {
 		bs = append(bs, l.margins(s, material)...)
 	}
 	if l.CleavageNormal != nil && l.CleavageMargin > 0 {
 		c := mgl64.Vec3(*l.CleavageNormal)
+		seen := map[string]bool{}
 		for _, f := range s.Facets {
 			off := facets.Angle(math.Acos(min(1, math.Abs(f.Normal.Dot(c)))))
-			if off < l.CleavageMargin {
+			if name := facetName(f); off < l.CleavageMargin && !seen[name] {
+				seen[name] = true
 				bs = append(bs, Breach{float64((l.CleavageMargin - off) / l.CleavageMargin),
 					fmt.Sprintf("a facet of %s lies %v from the cleavage, less than %v", facetName(f), off, l.CleavageMargin)})
 			}
@@ -69,7 +78,7 @@ func (l *Limits) margins(s *facets.Stone, material *gems.Material) (bs []Breach)
 	}
 	critical, ok := trace.CriticalAngle(stone.Least(), medium)
 	if !ok {
-		return []Breach{{1, fmt.Sprintf("there is no critical angle from %s into %s", material.Name, l.MarginIn.Name)}}
+		return nil // refused before
 	}
 	lowest := math.Inf(1)
 	for _, c := range s.Corners {
@@ -87,13 +96,39 @@ func (l *Limits) margins(s *facets.Stone, material *gems.Material) (bs []Breach)
 			}
 		}
 		slope := facets.Angle(math.Acos(-f.Normal[2]))
-		if margin > 0 && slope < critical+margin {
+		if slope < critical+margin {
 			seen[f.Tier] = true
-			bs = append(bs, Breach{float64((critical + margin - slope) / margin),
-				fmt.Sprintf("pavilion %s %s at %v lies less than %v above the critical angle %v in %s", what, facetName(f), slope, margin, critical, l.MarginIn.Name)})
+			bs = append(bs, Breach{float64((critical + margin - slope) / (critical + margin)),
+				fmt.Sprintf("pavilion %s %s at %v lies less than %v above the critical angle %v in %s",
+					what, facetName(f), slope, margin, critical, l.MarginIn.Name)})
 		}
 	}
 	return bs
+}
+
+// narrowest returns the facet of the least width, and that width: between the nearest two
+// parallel lines that hold it, one of which lies along an edge. The girdle does not
+// count: its height has a limit of its own.
+func narrowest(s *facets.Stone) (facet int, width float64) {
+	width = math.Inf(1)
+	for i := range s.Facets {
+		f := &s.Facets[i]
+		if f.Side == facets.Girdle {
+			continue
+		}
+		for k, c := range f.Corners {
+			a, b := s.Corners[c], s.Corners[f.Corners[(k+1)%len(f.Corners)]]
+			along := b.Sub(a).Normalize()
+			reach := 0.0
+			for _, other := range f.Corners {
+				reach = max(reach, s.Corners[other].Sub(a).Cross(along).Len())
+			}
+			if reach < width {
+				facet, width = i, reach
+			}
+		}
+	}
+	return facet, width
 }
 
 func facetName(f facets.Facet) string {

@@ -2,7 +2,6 @@ package tune
 
 import (
 	"bufio"
-	"bytes"
 	"crypto/sha256"
 	"encoding/hex"
 	"encoding/json"
@@ -12,13 +11,13 @@ import (
 	"os"
 )
 
-// Memory is a file of trials, so that a run that was stopped or killed goes on where
-// it was: it asks the same questions again and finds them answered. The file holds one
-// JSON value a line; a last line that was cut short is dropped. A nil Memory keeps
+// Memory is a file of what was seen, so that a run that was stopped or killed goes on
+// where it was: it asks the same questions again and finds them answered. The file holds
+// one JSON value a line; a last line that was cut short is dropped. A nil Memory keeps
 // nothing.
 type Memory struct {
 	Path    string
-	Purpose string // what the trials depend on beside their values: plan text, goal, limits
+	Purpose string // what the stones depend on beside the problem: the plan's text, the width
 	file    *os.File
 }
 
@@ -31,8 +30,8 @@ type memoryHead struct {
 }
 
 type memoryLine struct {
-	Key   string `json:"key"`
-	Trial Trial  `json:"trial"`
+	Key string `json:"key"`
+	sight
 }
 
 // open reads what the file holds into the judge and has it write on.
@@ -40,11 +39,11 @@ func (m *Memory) open(j *judge) error {
 	if m == nil {
 		return nil
 	}
-	sum := sha256.Sum256([]byte(m.Purpose))
-	head := memoryHead{"tuning trials 1", hex.EncodeToString(sum[:])}
+	sum := sha256.Sum256([]byte(m.Purpose + "\n" + j.purpose()))
+	head := memoryHead{"what was seen in tuning 1", hex.EncodeToString(sum[:])}
 	f, err := os.OpenFile(m.Path, os.O_RDWR|os.O_CREATE, 0o644)
 	if err != nil {
-		return err
+		return &MemoryError{m.Path, err}
 	}
 	good, err := readMemory(io.LimitReader(f, mostMemory), head, j.known)
 	if err == nil && good == 0 {
@@ -57,16 +56,18 @@ func (m *Memory) open(j *judge) error {
 	}
 	if err != nil {
 		f.Close()
-		return fmt.Errorf("%s: %w", m.Path, err)
+		return &MemoryError{m.Path, err}
 	}
 	m.file = f
-	j.keep = func(key string, t Trial) error {
-		line, err := json.Marshal(memoryLine{key, t})
-		if err != nil {
-			return err
+	j.keep = func(key string, s sight) error {
+		line, err := json.Marshal(memoryLine{key, s})
+		if err == nil {
+			_, err = f.Write(append(line, '\n'))
 		}
-		_, err = f.Write(append(line, '\n'))
-		return err
+		if err != nil {
+			return &MemoryError{m.Path, err}
+		}
+		return nil
 	}
 	return nil
 }
@@ -76,8 +77,28 @@ func (m *Memory) Close() error {
 	if m == nil || m.file == nil {
 		return nil
 	}
-	return m.file.Close()
+	f := m.file
+	m.file = nil
+	return f.Close()
 }
+
+// MemoryError says that the file of a Memory cannot be used.
+type MemoryError struct {
+	Path string
+	Err  error
+}
+
+// Error names the file and what is wrong.
+func (e *MemoryError) Error() string { return fmt.Sprintf("%s: %v", e.Path, e.Err) }
+
+// Unwrap returns what is wrong.
+func (e *MemoryError) Unwrap() error { return e.Err }
+
+// What a memory's file may be instead.
+var (
+	errNoMemory    = errors.New("this file holds nothing that tuning saw; name another one, or a new one")
+	errOtherMemory = errors.New("what this file holds was seen for another plan, goal or set of limits; name another one, or a new one")
+)
 
 func writeHead(f *os.File, head memoryHead) (int64, error) {
 	line, err := json.Marshal(head)
@@ -90,11 +111,14 @@ func writeHead(f *os.File, head memoryHead) (int64, error) {
 
 // readMemory reads whole lines into known and returns where the last one ends; 0 for
 // an empty file.
-func readMemory(r io.Reader, want memoryHead, known map[string]Trial) (good int64, err error) {
+func readMemory(r io.Reader, want memoryHead, known map[string]sight) (good int64, err error) {
 	in := bufio.NewReader(r)
 	for n := 0; ; n++ {
 		line, err := in.ReadBytes('\n')
 		if errors.Is(err, io.EOF) {
+			if n == 0 && len(line) > 0 {
+				return 0, errNoMemory // rather than cut off somebody's text
+			}
 			return good, nil // a line without an end was cut short
 		}
 		if err != nil {
@@ -103,18 +127,17 @@ func readMemory(r io.Reader, want memoryHead, known map[string]Trial) (good int6
 		if n == 0 {
 			var head memoryHead
 			if json.Unmarshal(line, &head) != nil || head.Pavilight != want.Pavilight {
-				return 0, errors.New("this is no file of tuning trials; name another one")
+				return 0, errNoMemory
 			}
 			if head.Purpose != want.Purpose {
-				return 0, errors.New("these trials belong to another plan, goal or set of limits; name another file")
+				return 0, errOtherMemory
 			}
 		} else {
 			var l memoryLine
-			d := json.NewDecoder(bytes.NewReader(line))
-			if d.Decode(&l) != nil {
+			if json.Unmarshal(line, &l) != nil {
 				return good, nil // garbage from here on, as after a crash: it is asked again
 			}
-			known[l.Key] = l.Trial
+			known[l.Key] = l.sight
 		}
 		good += int64(len(line))
 	}

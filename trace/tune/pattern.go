@@ -1,5 +1,6 @@
 // Package tune searches for better angles: what a stone's shape may vary in, what it
-// is to be good at, and under which limits at the lap.
+// is to be good at, and under which limits at the lap. It also shows the goal over two
+// angles, what errors of the machine cost, and how a plan moves to another material.
 //
 // Every candidate is traced with the same sample points (common random numbers), so a
 // comparison of two candidates is much more certain than either value, and the same
@@ -18,7 +19,7 @@ import (
 
 // Variable is one number of a stone that the search may change.
 type Variable struct {
-	Name string  // of the tier, or of the proportion
+	Name string  // of the tier, of tiers joined by +, of a tier's stop rule (C1.girdle), or of the proportion
 	Unit string  // "degrees" or "%"; empty for a plain number
 	Now  float64 // value in the pattern as it stands, in Unit
 	Low  float64 // least value allowed
@@ -28,6 +29,7 @@ type Variable struct {
 
 // round returns the value on the variable's steps, within its limits.
 func (v Variable) round(x float64) float64 {
+	x = min(max(x, v.Low), v.High)
 	if v.Step > 0 {
 		x = math.Round(x/v.Step) * v.Step
 		if x < v.Low-v.Step*1e-9 {
@@ -42,6 +44,15 @@ func (v Variable) round(x float64) float64 {
 	return min(max(x, v.Low), v.High)
 }
 
+// stride returns the smallest change that counts: the step, or a 256th of the limits'
+// span where there is none.
+func (v Variable) stride() float64 {
+	if v.Step > 0 {
+		return v.Step
+	}
+	return (v.High - v.Low) / 256
+}
+
 // Pattern is a family of stones: one for each choice of some numbers.
 type Pattern interface {
 	// Variables returns what can be varied, each with its value now and the widest limits.
@@ -51,37 +62,90 @@ type Pattern interface {
 	Build(names []string, values []float64) (*facets.Stone, error)
 }
 
-// PlanPattern varies the angles of a plan's tiers. Its corners are kept: whatever the
-// stop rules name stays met, and what cannot be met is an error.
+// PlanPattern varies the angles of a plan's tiers, and the sizes at which its stop
+// rules stop. Its corners are kept: whatever the stop rules name stays met, and what
+// cannot be met is an error.
 type PlanPattern struct{ Plan *facets.Plan }
 
+// How far an angle may go from where it stands unless the user widens the limits, and
+// a size as a share of itself.
+const (
+	usualReach = 6.0 // degrees
+	usualShare = 0.3
+	usualStep  = 0.1 // degrees; the finest mark of a usual protractor: common practice, no source
+	sizeStep   = 0.001
+)
+
 // Variables returns the angle of every tier that gives one and is neither level nor
-// upright.
+// upright, then the size of every tier's stop rule that has one.
 func (p PlanPattern) Variables() []Variable {
 	var vs []Variable
 	for i := range p.Plan.Tiers {
 		t := &p.Plan.Tiers[i]
 		if a := t.Angle.Degrees(); t.HasAngle && t.Side != facets.Table && a > 0 && a < 90 {
-			vs = append(vs, Variable{Name: t.Name, Unit: "degrees", Now: a, Low: max(1, a-15), High: min(89, a+15), Step: 0.1})
+			vs = append(vs, Variable{Name: t.Name, Unit: "degrees", Now: a,
+				Low: max(1, a-usualReach), High: min(89, a+usualReach), Step: usualStep})
+		}
+	}
+	for i := range p.Plan.Tiers {
+		t := &p.Plan.Tiers[i]
+		switch x := t.Stop.Value; t.Stop.Rule {
+		case facets.StopTable, facets.StopCulet:
+			vs = append(vs, Variable{Name: t.Name + "." + t.Stop.Rule.String(), Unit: "%", Now: 100 * x,
+				Low: 100 * x * (1 - usualShare), High: min(99, 100*x*(1+usualShare)), Step: 0.1})
+		case facets.StopMeet, facets.NoStop:
+		default:
+			if x != 0 {
+				low, high := min(x*(1-usualShare), x*(1+usualShare)), max(x*(1-usualShare), x*(1+usualShare))
+				vs = append(vs, Variable{Name: t.Name + "." + t.Stop.Rule.String(), Now: x, Low: low, High: high, Step: sizeStep})
+			}
 		}
 	}
 	return vs
 }
 
-// Build solves the plan with the named tiers at other angles.
+// Build solves the plan with the named values changed.
 func (p PlanPattern) Build(names []string, values []float64) (*facets.Stone, error) {
 	return p.With(names, values).Solve()
 }
 
-// With returns the plan with the named tiers at other angles.
+// With returns the plan with the named values changed. Of tiers joined by + the value
+// is the first one's, and the others change by as much.
 func (p PlanPattern) With(names []string, values []float64) *facets.Plan {
 	plan := p.Plan.Clone()
-	for i := range plan.Tiers {
-		if k := slices.Index(names, plan.Tiers[i].Name); k >= 0 {
-			plan.Tiers[i].Angle = facets.Angle(values[k]) * facets.Degree
+	for k, name := range names {
+		tiers := strings.Split(name, "+")
+		change := facets.Angle(0)
+		for n, tier := range tiers {
+			i := slices.IndexFunc(plan.Tiers, func(t facets.Tier) bool { return t.Name == tier })
+			switch {
+			case i < 0:
+				tier, rule, _ := cutLast(name)
+				i = slices.IndexFunc(plan.Tiers, func(t facets.Tier) bool { return t.Name == tier && t.Stop.Rule.String() == rule })
+				if i >= 0 {
+					plan.Tiers[i].Stop.Value = values[k]
+					if r := plan.Tiers[i].Stop.Rule; r == facets.StopTable || r == facets.StopCulet {
+						plan.Tiers[i].Stop.Value = values[k] / 100
+					}
+				}
+			case n == 0:
+				change = facets.Angle(values[k])*facets.Degree - plan.Tiers[i].Angle
+				plan.Tiers[i].Angle = facets.Angle(values[k]) * facets.Degree
+			default:
+				plan.Tiers[i].Angle = facets.Angle(math.Round((plan.Tiers[i].Angle+change).Degrees()*1e9)/1e9) * facets.Degree
+			}
 		}
 	}
 	return plan
+}
+
+// cutLast splits C1.girdle into tier and rule: tiers may have dots in their names.
+func cutLast(name string) (tier, rule string, ok bool) {
+	i := strings.LastIndexByte(name, '.')
+	if i < 0 {
+		return name, "", false
+	}
+	return name[:i], name[i+1:], true
 }
 
 // ProportionsPattern varies measured proportions.
@@ -90,13 +154,23 @@ type ProportionsPattern struct {
 	WidthMM     float64
 }
 
-// Variables returns every proportion of the outline.
+// Variables returns every proportion of the outline that is no count.
 func (p ProportionsPattern) Variables() []Variable {
 	var vs []Variable
 	for _, k := range facets.ProportionsOf(p.Proportions.Outline) {
 		v := Variable{Name: k.Name, Unit: k.Unit, Now: k.Usual, Low: k.Low, High: k.High, Step: 0.1}
 		if given, ok := p.Proportions.Values[k.Name]; ok {
 			v.Now = given.Mean
+		}
+		switch {
+		case k.Unit == "degrees":
+			v.Low, v.High = max(k.Low, v.Now-usualReach), min(k.High, v.Now+usualReach)
+		case k.Name == "steps":
+			v.Step = 1
+		case k.Unit == "":
+			v.Step = 0.01
+		case k.Unit == "%" && v.Now > 0:
+			v.Low, v.High = max(k.Low, v.Now*(1-usualShare)), min(k.High, v.Now*(1+usualShare))
 		}
 		vs = append(vs, v)
 	}
@@ -105,6 +179,11 @@ func (p ProportionsPattern) Variables() []Variable {
 
 // Build makes the stone of the proportions with some of them changed.
 func (p ProportionsPattern) Build(names []string, values []float64) (*facets.Stone, error) {
+	return p.With(names, values).Stone(p.WidthMM)
+}
+
+// With returns the proportions with some of them changed.
+func (p ProportionsPattern) With(names []string, values []float64) *facets.Proportions {
 	changed := &facets.Proportions{Outline: p.Proportions.Outline, Values: map[string]facets.Spread{}}
 	for name, v := range p.Proportions.Values {
 		changed.Values[name] = v
@@ -112,11 +191,30 @@ func (p ProportionsPattern) Build(names []string, values []float64) (*facets.Sto
 	for i, name := range names {
 		changed.Values[name] = facets.Spread{Min: values[i], Mean: values[i], Max: values[i]}
 	}
-	return changed.Stone(p.WidthMM)
+	return changed
 }
 
-// Choose returns the pattern's variables of the given names, in their order. An
-// unknown name is an error that lists what can be varied.
+// Widest returns how far a variable can go at all, whatever the usual limits are.
+func Widest(p Pattern, v Variable) (low, high float64) {
+	if q, ok := p.(ProportionsPattern); ok {
+		for _, k := range facets.ProportionsOf(q.Proportions.Outline) {
+			if k.Name == v.Name {
+				return k.Low, k.High
+			}
+		}
+	}
+	switch v.Unit {
+	case "degrees":
+		return 0.1, 89.9
+	case "%":
+		return 0.1, 99
+	}
+	return math.Inf(-1), math.Inf(1)
+}
+
+// Choose returns the pattern's variables of the given names, in their order. Tiers
+// joined by + move together: the first one's angle is the variable. An unknown name is
+// an error that lists what can be varied.
 func Choose(p Pattern, names ...string) ([]Variable, error) {
 	all := p.Variables()
 	known := make([]string, len(all))
@@ -124,15 +222,57 @@ func Choose(p Pattern, names ...string) ([]Variable, error) {
 		known[i] = v.Name
 	}
 	var chosen []Variable
+	taken := map[string]bool{}
 	for _, name := range names {
-		i := slices.Index(known, name)
-		switch {
-		case i < 0:
-			return nil, fmt.Errorf("nothing named %q can be varied here; choose from %s", name, strings.Join(known, ", "))
-		case slices.ContainsFunc(chosen, func(v Variable) bool { return v.Name == name }):
-			return nil, fmt.Errorf("%q is named twice", name)
+		var first Variable
+		for n, part := range strings.Split(name, "+") {
+			i := slices.Index(known, part)
+			switch {
+			case i < 0:
+				return nil, fmt.Errorf("nothing named %q can be varied here; choose from %s", part, strings.Join(known, ", "))
+			case taken[part]:
+				return nil, fmt.Errorf("%q is named twice", part)
+			case n == 0:
+				first = all[i]
+			case first.Unit != "degrees" || all[i].Unit != "degrees":
+				return nil, fmt.Errorf("%q: only angles of a plan's tiers can be joined by +", name)
+			}
+			taken[part] = true
 		}
-		chosen = append(chosen, all[i])
+		first.Name = name
+		chosen = append(chosen, first)
 	}
 	return chosen, nil
+}
+
+// Mains returns the names of the tiers, or proportions, that shape the light most: the
+// pavilion tier and the crown tier whose facets together hold most of the stone as seen
+// from above. It returns fewer where there are none.
+func Mains(p Pattern) []string {
+	if _, ok := p.(ProportionsPattern); ok {
+		return []string{"pavilion", "crown"}
+	}
+	stone, err := p.Build(nil, nil)
+	if err != nil {
+		return nil
+	}
+	var names []string
+	for _, side := range []facets.Side{facets.Pavilion, facets.Crown} {
+		areas := map[string]float64{}
+		best := ""
+		for _, v := range p.Variables() {
+			for _, f := range stone.Facets {
+				if f.Side == side && f.Tier == v.Name {
+					areas[v.Name] += f.Area * math.Abs(f.Normal[2])
+				}
+			}
+			if areas[v.Name] > areas[best] {
+				best = v.Name
+			}
+		}
+		if best != "" {
+			names = append(names, best)
+		}
+	}
+	return names
 }
