@@ -107,8 +107,8 @@ func newRun(scene Scene, settings Settings) (*run, error) {
 		r.points[i] = newPoints(settings.Seed, i)
 	}
 	r.images = 1
-	if s := r.tracer.symmetry(scene.Stone, scene.byTier()); s.images() > 1 && settings.Light == nil {
-		r.symmetry, r.images = &s, s.images()
+	if s := r.tracer.symmetry(scene.Stone, scene.byTier()); len(s.images) > 1 && settings.Light == nil {
+		r.symmetry, r.images = &s, len(s.images)
 	}
 	inside := r.tracer.mask(settings.Pixels)
 	for _, in := range inside {
@@ -160,9 +160,9 @@ func (r *run) done() float64 {
 func (r *run) pass(ctx context.Context) error {
 	chunks := max(1, min(r.chunks, mostChunksAPass))
 	units := chunks * scramblings
-	done := make(chan *chunk)
 	var next atomic.Int64
 	var workers sync.WaitGroup
+	adder := adder{run: r, waiting: map[int]*chunk{}}
 	for range min(r.settings.Workers, units) {
 		workers.Go(func() {
 			for ctx.Err() == nil {
@@ -170,28 +170,12 @@ func (r *run) pass(ctx context.Context) error {
 				if unit >= units {
 					return
 				}
-				done <- r.trace(unit, unit%scramblings, r.chunks+unit/scramblings)
+				adder.take(r.trace(unit, unit%scramblings, r.chunks+unit/scramblings))
 			}
 		})
 	}
-	go func() {
-		workers.Wait()
-		close(done)
-	}()
-
-	// Chunks are added in the order of their numbers, whoever traced them: sums of
-	// rounded numbers depend on their order.
-	waiting := map[int]*chunk{}
-	added := 0
-	for c := range done {
-		waiting[c.unit] = c
-		for waiting[added] != nil {
-			r.add(waiting[added])
-			delete(waiting, added)
-			added++
-		}
-	}
-	if added < units {
+	workers.Wait()
+	if adder.added < units {
 		return context.Cause(ctx)
 	}
 	r.chunks += chunks
@@ -201,6 +185,35 @@ func (r *run) pass(ctx context.Context) error {
 		r.error = max(r.error, se.ledger().Max())
 	}
 	return nil
+}
+
+// adder takes chunks into a run in the order of their numbers, whoever traced them:
+// sums of rounded numbers depend on their order. The workers do that themselves, one
+// at a time, so that a run keeps no more processors busy than it was given.
+type adder struct {
+	run     *run
+	mutex   sync.Mutex // over what follows
+	waiting map[int]*chunk
+	added   int
+	adding  bool // a worker is at it; it takes along what is handed in meanwhile
+}
+
+func (a *adder) take(c *chunk) {
+	a.mutex.Lock()
+	defer a.mutex.Unlock()
+	a.waiting[c.unit] = c
+	if a.adding {
+		return
+	}
+	a.adding = true
+	for c := a.waiting[a.added]; c != nil; c = a.waiting[a.added] {
+		delete(a.waiting, a.added)
+		a.mutex.Unlock()
+		a.run.add(c)
+		a.mutex.Lock()
+		a.added++
+	}
+	a.adding = false
 }
 
 // chunk is the outcome of a run of points of one scrambling.

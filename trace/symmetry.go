@@ -18,35 +18,37 @@ type symmetry struct {
 	mirror bool    // it also looks the same mirrored
 	axis   float64 // angle of a mirror line from the picture's right; 0 if there is none
 
-	middle [2]float64 // of the picture's square to the point about which it is symmetric
-	reach  float64    // from that point to the farthest corner of the outline
-}
-
-// images is the number of images that each point has, itself included.
-func (s *symmetry) images() int {
-	if s.mirror {
-		return 2 * s.turns
-	}
-	return s.turns
+	middle [2]float64   // of the picture's square to the point about which it is symmetric
+	reach  float64      // from that point to the farthest corner of the outline
+	images [][4]float64 // the turns and mirrors, as matrices row by row; the first changes nothing
 }
 
 // place lays a point of the unit square into the sector, evenly by area. The sector
 // may reach beyond the outline. u and v are the picture's, from its middle.
 func (s *symmetry) place(x, y float64) (u, v float64) {
 	r := s.reach * math.Sqrt(x)
-	sin, cos := math.Sincos(s.axis + 2*math.Pi*y/float64(s.images()))
+	sin, cos := math.Sincos(s.axis + 2*math.Pi*y/float64(len(s.images)))
 	return s.middle[0] + r*cos, s.middle[1] + r*sin
 }
 
 // image returns image number i of the point (u, v) of the picture; number 0 is itself.
 func (s *symmetry) image(u, v float64, i int) (float64, float64) {
 	u, v = u-s.middle[0], v-s.middle[1]
-	if i >= s.turns {
-		sin, cos := math.Sincos(2 * s.axis)
-		u, v = cos*u+sin*v, sin*u-cos*v
+	m := &s.images[i]
+	return s.middle[0] + m[0]*u + m[1]*v, s.middle[1] + m[2]*u + m[3]*v
+}
+
+// findImages lists the images.
+func (s *symmetry) findImages() {
+	for k := range s.turns {
+		sin, cos := math.Sincos(2 * math.Pi * float64(k) / float64(s.turns))
+		s.images = append(s.images, [4]float64{cos, -sin, sin, cos})
+		if s.mirror {
+			// Mirrored at the axis, then turned: about the axis turned by half as much.
+			sin, cos := math.Sincos(2*s.axis + 2*math.Pi*float64(k)/float64(s.turns))
+			s.images = append(s.images, [4]float64{cos, sin, sin, -cos})
+		}
 	}
-	sin, cos := math.Sincos(2 * math.Pi * float64(i%s.turns) / float64(s.turns))
-	return s.middle[0] + cos*u - sin*v, s.middle[1] + sin*u + cos*v
 }
 
 // sameFacet is how far two facets may be from images of each other, in radians and in
@@ -56,13 +58,14 @@ const sameFacet = 1e-8
 
 // symmetry finds the symmetry of what the eye sees. Where byTier is set facets of
 // unlike tiers are unlike. An eye that is near sees none.
-func (t *tracer) symmetry(s *facets.Stone, byTier bool) symmetry {
+func (t *tracer) symmetry(s *facets.Stone, byTier bool) (found symmetry) {
 	o := t.outline
-	found := symmetry{turns: 1, middle: [2]float64{-o.centre.dot(o.right), -o.centre.dot(o.up)}}
+	found = symmetry{turns: 1, middle: [2]float64{-o.centre.dot(o.right), -o.centre.dot(o.up)}}
 	for _, c := range s.Corners {
 		x := t.body.relative(c)
 		found.reach = max(found.reach, math.Hypot(x.dot(o.right), x.dot(o.up)))
 	}
+	defer found.findImages()
 	rings := t.rings(s, byTier)
 	if t.near || len(rings) == 0 {
 		return found
