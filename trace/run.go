@@ -107,7 +107,7 @@ func newRun(scene Scene, settings Settings) (*run, error) {
 		r.points[i] = newPoints(settings.Seed, i)
 	}
 	r.images = 1
-	if s := r.tracer.symmetry(scene.Stone, scene.byTier()); len(s.images) > 1 && settings.Light == nil {
+	if s := r.tracer.symmetry(scene.Stone, scene.byTier()); len(s.images) > 1 && settings.Light == nil && !scene.leans(r.tracer.outline.eye) {
 		r.symmetry, r.images = &s, len(s.images)
 	}
 	inside := r.tracer.mask(settings.Pixels)

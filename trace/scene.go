@@ -89,6 +89,13 @@ const liquidAbove = 0.5
 // double reports whether the stone is followed as doubly refracting.
 func (s Scene) double() bool { return s.Axis != nil && s.Material.Character().Uniaxial() }
 
+// leans reports whether the optic axis counts and does not point along the line of
+// sight, toward eye: then a stone with symmetric facets does not look symmetric.
+func (s Scene) leans(eye vec) bool {
+	const along = 1e-9
+	return s.double() && fromMgl(s.Axis.Normalize()).cross(eye).length() > along
+}
+
 // plain reports whether column k is clean facets in one clear medium, under the even
 // light, seen from afar: what the fast tracer knows.
 func (s Scene) plain(k int, settings Settings) bool {

@@ -407,15 +407,39 @@ func TestAxisFaults(t *testing.T) {
 func TestLimits(t *testing.T) {
 	scene := lump(t)
 	scene.Material, scene.Axis = uniaxial(t, "zircon", 1.925, 1.984), &mgl64.Vec3{0, 1, 0}
-	settings := Settings{Wavelength: 589.3, Pixels: 2, Samples: 1}
-	limits := mustRun(t, scene, settings).Columns[0].Limits
+	limits := untraced(t, scene, Settings{Wavelength: 589.3}).result().Columns[0].Limits
 	if len(limits) != 2 {
 		t.Fatalf("%d limits, want 2", len(limits))
 	}
 	near(t, "zircon in air, lower index", limits[0].Critical.Degrees(), 31.30, 5e-3, "asin 1/n, indices of handbooks")
 	near(t, "zircon in air, higher index", limits[1].Critical.Degrees(), 30.27, 5e-3, "asin 1/n, indices of handbooks")
 	scene.Axis = nil
-	if l := mustRun(t, scene, settings).Columns[0].Limits; l != nil {
+	if l := untraced(t, scene, Settings{Wavelength: 589.3}).result().Columns[0].Limits; l != nil {
 		t.Errorf("without an axis there must be none: %v", l)
+	}
+}
+
+// untraced is a run that has traced nothing yet.
+func untraced(t *testing.T, scene Scene, settings Settings) *run {
+	t.Helper()
+	r, err := newRun(scene, settings)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return r
+}
+
+// TestAxisBreaksSymmetry traces one sector of a symmetric stone only where the axis
+// points along the line of sight.
+func TestAxisBreaksSymmetry(t *testing.T) {
+	scene := Scene{Stone: brilliant(t), Material: uniaxial(t, "zircon", 1.925, 1.984), Surroundings: Around(plain(t, "air", 1))}
+	for _, row := range []struct {
+		axis   *mgl64.Vec3
+		images int
+	}{{nil, 16}, {&mgl64.Vec3{0, 0, -3}, 16}, {&mgl64.Vec3{0.1, 0, 1}, 1}} {
+		scene.Axis = row.axis
+		if got := untraced(t, scene, Settings{Wavelength: 550}).images; got != row.images {
+			t.Errorf("axis %v: %d images of a sector, want %d", row.axis, got, row.images)
+		}
 	}
 }
