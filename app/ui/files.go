@@ -203,8 +203,7 @@ func (w *window) unlessUnsaved(what string, do func()) {
 		choice("Save", widget.HighImportance, func() { w.saveThen(do) }),
 	})
 	d.Show()
-	w.tellPlaces()
-	w.tell("asked")
+	w.tellOnceDrawn("asked")
 }
 
 // requestClose closes the window, but asks first if work would be lost.

@@ -43,6 +43,22 @@ func (w *window) started(path string) {
 	}
 }
 
+// tellOnceDrawn tells a stage, and the places, when what was just put up is drawn:
+// only then has it a place.
+func (w *window) tellOnceDrawn(stage string) {
+	if os.Getenv(stagesVariable) == "" {
+		w.tell(stage)
+		return
+	}
+	const frames = 200 * time.Millisecond
+	time.AfterFunc(frames, func() {
+		w.do(func() {
+			w.tellPlaces()
+			w.tell(stage)
+		})
+	})
+}
+
 // tellPlaces prints where things are on the screen, in its pixels, for scripts that
 // point at them: "PLACE field P1 48 439", the middle of each.
 func (w *window) tellPlaces() {

@@ -24,6 +24,7 @@ type window struct {
 	app   fyne.App
 	win   fyne.Window
 	bench *model.Bench
+	do    func(func())       // hands work to the toolkit's goroutine
 	tell  func(stage string) // of interest to scripts that drive the window
 
 	// header
@@ -70,7 +71,7 @@ type window struct {
 // newWindow builds the window around a bench; nothing is shown yet. do hands work to
 // the toolkit's goroutine, in order, without waiting for it.
 func newWindow(a fyne.App, doc *model.Document, do func(func()), tell func(string)) (*window, error) {
-	w := &window{app: a, tell: tell, stages: map[string]bool{}}
+	w := &window{app: a, do: do, tell: tell, stages: map[string]bool{}}
 	bench, err := model.NewBench(doc, do, w.onLook, w.onPlan)
 	if err != nil {
 		return nil, err
