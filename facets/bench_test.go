@@ -10,7 +10,8 @@ import (
 // steppedRound is a plan of rings of facets, each met by the next: rings times
 // around facets a side.
 func steppedRound(rings, around int) *Plan {
-	p := &Plan{File: "bench", Name: "rings", Material: MaterialRef{Key: "quartz"}, WidthMM: 10, Gear: 2 * around}
+	p := &Plan{File: "bench", Name: "rings", Material: MaterialRef{Key: "quartz"}, WidthMM: 10,
+		Gear: 2 * around}
 	ring := func(offset float64) []float64 {
 		list := make([]float64, around)
 		for i := range list {
@@ -19,7 +20,8 @@ func steppedRound(rings, around int) *Plan {
 		return list
 	}
 	add := func(name string, side Side, angle, offset float64, stop Stop) {
-		p.Tiers = append(p.Tiers, Tier{Name: name, Side: side, Angle: Angle(angle) * Degree, HasAngle: true, Index: ring(offset), Stop: stop})
+		p.Tiers = append(p.Tiers, Tier{Name: name, Side: side, Angle: Angle(angle) * Degree, HasAngle: true,
+			Index: ring(offset), Stop: stop})
 	}
 	add("G", Girdle, 90, 0, Stop{Rule: StopDistance, Value: 1})
 	for _, side := range []Side{Pavilion, Crown} {
@@ -31,15 +33,18 @@ func steppedRound(rings, around int) *Plan {
 			case 0:
 				add(name, side, angle, 0, Stop{Rule: StopLevel, Value: 0.02 * up(side)})
 			case 1:
-				add(name, side, angle, 1, Stop{Rule: StopMeet, Corners: [][]Mark{{{Tier: last}, {Tier: "G"}}}})
+				add(name, side, angle, 1, Stop{Rule: StopMeet, Corners: [][]Mark{{{Tier: last},
+					{Tier: "G"}}}})
 			default:
 				// Through the corner where a facet of the ring before last meets two of the last.
-				add(name, side, angle, float64(k%2), Stop{Rule: StopMeet, Corners: [][]Mark{{{Tier: last}, {Tier: p.Tiers[len(p.Tiers)-2].Name}}}})
+				add(name, side, angle, float64(k%2), Stop{Rule: StopMeet, Corners: [][]Mark{{{Tier: last},
+					{Tier: p.Tiers[len(p.Tiers)-2].Name}}}})
 			}
 			last = name
 		}
 	}
-	p.Tiers = append(p.Tiers, Tier{Name: "T", Side: Table, HasAngle: true, Stop: Stop{Rule: StopTable, Value: 0.3}})
+	p.Tiers = append(p.Tiers, Tier{Name: "T", Side: Table, HasAngle: true, Stop: Stop{Rule: StopTable,
+		Value: 0.3}})
 	return p
 }
 

@@ -80,7 +80,8 @@ func FuzzFromPlanes(f *testing.F) {
 	cube := []byte{9, 8, 8, 1, 0, 7, 8, 8, 1, 0, 8, 9, 8, 1, 0, 8, 7, 8, 1, 0, 8, 8, 9, 1, 0, 8, 8, 7, 1, 0}
 	f.Add(cube)
 	f.Add(append(bytes.Clone(cube), 9, 9, 8, 2, 0, 9, 9, 9, 2, 0, 9, 9, 9, 2, 1, 10, 9, 9, 3, 2))
-	f.Add(append(bytes.Clone(cube), 9, 9, 8, 1, 0, 9, 7, 8, 1, 0, 7, 9, 8, 1, 0, 7, 7, 8, 1, 0, 9, 8, 9, 1, 0, 9, 8, 7, 1, 3))
+	f.Add(append(bytes.Clone(cube), 9, 9, 8, 1, 0, 9, 7, 8, 1, 0, 7, 9, 8, 1, 0, 7, 7, 8, 1, 0, 9, 8, 9, 1, 0,
+		9, 8, 7, 1, 3))
 	f.Fuzz(func(t *testing.T, data []byte) {
 		var planes []Plane
 		for len(data) >= 5 && len(planes) < 60 {

@@ -55,22 +55,31 @@ type Definition struct {
 // lists them.
 func Definitions() []Definition {
 	const trade = "common practice, no source"
+	const formula = "formula: arithmetic; definition: " + trade
 	return []Definition{
-		{"width_mm", "least distance between two parallel lines that hold the outline seen from above; over the corners for a round outline", trade},
+		{"width_mm",
+			"least distance between two parallel lines that hold the outline; over the corners if it is round", trade},
 		{"length_mm", "extent of the outline across the width", trade},
 		{"depth_mm", "from the table to the lowest point, along the axis", trade},
-		{"table_percent", "width of the table, corner to corner for a round and across the width otherwise, over the width of the stone", trade},
-		{"crown_height_percent", "from the girdle's highest place to the table, over the width; (100 - table)/2 tan(crown angle) for a round",
-			"formula: any trade text on proportions; definition: " + trade},
-		{"pavilion_depth_percent", "from the girdle's lowest place to the culet, over the width; (100 - culet)/2 tan(pavilion angle) for a round",
-			"formula: any trade text on proportions; definition: " + trade},
-		{"girdle_percent", "height of the girdle's upright facets where they are thinnest and thickest, over the width; thinnest 0 where the rim is sharp", trade},
-		{"girdle_height_mm", "height over z = 0 of the girdle's lowest and highest place, and midway between its mean upper and mean lower edge", "this program's own"},
-		{"culet_percent", "width of the level flat below, taken like the table, over the width; 0 for a point", trade},
-		{"smallest_facet_mm", "least distance between two parallel lines that hold a facet, of the narrowest facet", trade},
+		{"table_percent",
+			"width of the table over the width; corner to corner for a round, across the width otherwise", trade},
+		{"crown_height_percent",
+			"from the girdle's highest place to the table, over the width;" +
+				" in a round (100 - table)/2 tan(crown angle)", formula},
+		{"pavilion_depth_percent",
+			"from the girdle's lowest place to the culet, over the width;" +
+				" in a round (100 - culet)/2 tan(pavilion angle)", formula},
+		{"girdle_percent",
+			"height of the upright facets where least and most, over the width; least is 0 where the rim is sharp", trade},
+		{"girdle_height_mm",
+			"z of the girdle's lowest and highest place, and midway between its mean upper and lower edge",
+			"this program's own"},
+		{"culet_percent", "width of the level flat below, taken like the table; 0 for a point", trade},
+		{"smallest_facet_mm", "least distance between two parallel lines that hold the narrowest facet", trade},
 		{"area_mm2", "area of a facet's polygon", "geometry"},
 		{"volume_mm3", "a third of the sum of facet area times facet distance", "Gauss's theorem"},
-		{"carats", "volume times density, at 0.2 g a carat", "metric carat, 4th General Conference on Weights and Measures, 1907"},
+		{"carats", "volume times density, at 0.2 g a carat",
+			"metric carat, 4th General Conference on Weights and Measures, 1907 (from memory)"},
 	}
 }
 

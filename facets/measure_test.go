@@ -18,11 +18,14 @@ func TestMeasureByFormula(t *testing.T) {
 	}{
 		{"width", m.WidthMM, 8, "the plan's width_mm"},
 		{"pavilion depth", m.PavilionDepthPercent, 50 * tan(41.5), "(100 - culet)/2 tan(pavilion angle)"},
-		{"crown height", m.CrownHeightPercent, (100 - m.TablePercent) / 2 * tan(35), "(100 - table)/2 tan(crown angle)"},
-		{"the parts of the depth", m.CrownHeightPercent + m.GirdlePercent.Max + m.PavilionDepthPercent, m.DepthPercent, "they add up in a round"},
+		{"crown height", m.CrownHeightPercent, (100 - m.TablePercent) / 2 * tan(35),
+			"(100 - table)/2 tan(crown angle)"},
+		{"the parts of the depth", m.CrownHeightPercent + m.GirdlePercent.Max + m.PavilionDepthPercent,
+			m.DepthPercent, "they add up in a round"},
 		{"girdle, thin and thick", m.GirdlePercent.Min, m.GirdlePercent.Max, "the halves leave it level"},
 		{"girdle in plan units", m.GirdleMM.Mean, 0.05 * sol.Scale, "the plan's rule girdle = 0.05"},
-		{"middle of the girdle", m.GirdleHeightMM.Middle, (m.GirdleHeightMM.Min + m.GirdleHeightMM.Max) / 2, "level edges"},
+		{"middle of the girdle", m.GirdleHeightMM.Middle, (m.GirdleHeightMM.Min + m.GirdleHeightMM.Max) / 2,
+			"level edges"},
 		{"smallest facet", m.SmallestFacetMM, m.GirdleMM.Mean, "the girdle facets are the narrowest"},
 	} {
 		closeTo(t, row.what, row.got, row.want, 1e-11, row.source)
@@ -40,7 +43,8 @@ func TestMeasureByFormula(t *testing.T) {
 		{"length / width", m.Ratio, 1.3, "the girdle's distances"},
 		{"table", m.TablePercent, 58, "the plan's rule"},
 		{"girdle", m.GirdleMM.Max, 0.05 * sol.Scale, "the plan's rule"},
-		{"pavilion depth", m.PavilionDepthMM / sol.Scale, 0.5 + (1-0.2/tan(57)-0.3/tan(49))*tan(41.5), "three slopes one below the other"},
+		{"pavilion depth", m.PavilionDepthMM / sol.Scale, 0.5 + (1-0.2/tan(57)-0.3/tan(49))*tan(41.5),
+			"three slopes one below the other"},
 		{"width of the table", m.TableWidthMM, 0.58 * 7, "arithmetic"},
 	} {
 		closeTo(t, row.what, row.got, row.want, 1e-11, row.source)
@@ -52,8 +56,10 @@ func TestMeasureByFormula(t *testing.T) {
 func TestMeasureOddShapes(t *testing.T) {
 	wedge := []Plane{
 		{Side: Table, Normal: tilted(Crown, 0, 0, 0).Normal, Distance: 1},
-		{Side: Girdle, Normal: tilted(Girdle, 90, 0, 0).Normal, Distance: 1}, {Side: Girdle, Normal: tilted(Girdle, 90, 180, 0).Normal, Distance: 1},
-		{Side: Girdle, Normal: tilted(Girdle, 90, 90, 0).Normal, Distance: 1.5}, {Side: Girdle, Normal: tilted(Girdle, 90, 270, 0).Normal, Distance: 1.5},
+		{Side: Girdle, Normal: tilted(Girdle, 90, 0, 0).Normal, Distance: 1}, {Side: Girdle,
+			Normal: tilted(Girdle, 90, 180, 0).Normal, Distance: 1},
+		{Side: Girdle, Normal: tilted(Girdle, 90, 90, 0).Normal, Distance: 1.5}, {Side: Girdle,
+			Normal: tilted(Girdle, 90, 270, 0).Normal, Distance: 1.5},
 		tilted(Pavilion, 10, 0, 0),
 	}
 	s, err := FromPlanes("wedge", wedge)
@@ -84,22 +90,26 @@ func TestMeasureOddShapes(t *testing.T) {
 	if s, err = FromPlanes("", planes); err != nil {
 		t.Fatal(err)
 	}
-	if m = s.Measure(); m.GirdleMM.Max != 0 || math.Abs(m.GirdleHeightMM.Middle) > 1e-12 || math.Abs(m.GirdleHeightMM.Max) > 1e-12 {
+	if m = s.Measure(); m.GirdleMM.Max != 0 || math.Abs(m.GirdleHeightMM.Middle) > 1e-12 ||
+		math.Abs(m.GirdleHeightMM.Max) > 1e-12 {
 		t.Errorf("a sharp rim at z = 0 measures %+v, %+v", m.GirdleMM, m.GirdleHeightMM)
 	}
-	if s, err = FromPlanes("", append(planes, Plane{Side: Pavilion, Normal: tilted(Pavilion, 0, 0, 0).Normal, Distance: 0.8})); err != nil {
+	if s, err = FromPlanes("", append(planes, Plane{Side: Pavilion, Normal: tilted(Pavilion, 0, 0, 0).Normal,
+		Distance: 0.8})); err != nil {
 		t.Fatal(err)
 	}
 	// The culet's eight corners lie on the ridges between the mains.
 	p := 40.75 * math.Pi / 180
-	closeTo(t, "culet", s.Measure().CuletWidthMM, 2*(math.Tan(p)-0.8)/math.Tan(p)/math.Cos(math.Pi/8), 1e-12, "corner to corner")
+	closeTo(t, "culet", s.Measure().CuletWidthMM, 2*(math.Tan(p)-0.8)/math.Tan(p)/math.Cos(math.Pi/8), 1e-12,
+		"corner to corner")
 }
 
 // A regular polygon counts as round from eight corners on; a square with bowed
 // sides or cut corners does not.
 func TestRoundOutlines(t *testing.T) {
 	polygon := func(n int, bow float64) *Stone {
-		planes := []Plane{{Side: Table, Normal: tilted(Crown, 0, 0, 0).Normal, Distance: 1}, {Side: Pavilion, Normal: tilted(Pavilion, 0, 0, 0).Normal, Distance: 1}}
+		planes := []Plane{{Side: Table, Normal: tilted(Crown, 0, 0, 0).Normal, Distance: 1}, {Side: Pavilion,
+			Normal: tilted(Pavilion, 0, 0, 0).Normal, Distance: 1}}
 		for i := range n {
 			a := 360 / float64(n) * (float64(i) + 0.5)
 			planes = append(planes, tilted(Girdle, 90, a, 1+bow*math.Pow(math.Sin(2*a*math.Pi/180), 2)))
@@ -117,17 +127,20 @@ func TestRoundOutlines(t *testing.T) {
 		round bool
 		width float64 // 0: not asked
 	}{
-		{"triangle", 3, 0, false, 3}, {"square", 4, 0, false, 2}, {"hexagon", 6, 0, false, 2}, {"seven", 7, 0, false, 0},
+		{"triangle", 3, 0, false, 3}, {"square", 4, 0, false, 2}, {"hexagon", 6, 0, false, 2}, {"seven", 7, 0,
+			false, 0},
 		{"octagon", 8, 0, true, 2 / math.Cos(math.Pi/8)}, {"sixteen", 16, 0, true, 2 / math.Cos(math.Pi/16)},
 		{"sixty-four", 64, 0, true, 2 / math.Cos(math.Pi/64)},
-		{"cushion of 16", 16, 0.08, false, 0}, {"cushion of 64", 64, 0.08, false, 0}, {"rounds off by 0.2 %", 64, 0.002, true, 0},
+		{"cushion of 16", 16, 0.08, false, 0}, {"cushion of 64", 64, 0.08, false, 0}, {"rounds off by 0.2 %",
+			64, 0.002, true, 0},
 	} {
 		m := polygon(row.n, row.bow).Measure()
 		if m.Round != row.round {
 			t.Errorf("%s: round %v, want %v", row.name, m.Round, row.round)
 		}
 		if row.width > 0 {
-			closeTo(t, row.name+": width", m.WidthMM, row.width, 1e-9, "geometry of the regular polygon of inradius 1")
+			closeTo(t, row.name+": width", m.WidthMM, row.width, 1e-9,
+				"geometry of the regular polygon of inradius 1")
 		}
 	}
 }
@@ -147,13 +160,16 @@ func TestWeightFormulas(t *testing.T) {
 		source  string
 	}{
 		{"round", func(l, w, h float64) float64 { return w * w * h * 0.0061 }, "D² H 0.0061"},
-		{"oval", func(l, w, h float64) float64 { return (l + w) / 2 * (l + w) / 2 * h * 0.0062 }, "(mean D)² H 0.0062"},
-		{"step", func(l, w, h float64) float64 { return l * w * h * (0.0080 + (l/w-1)/0.5*0.0012) }, "L W H 0.0080 to 0.0092 for L:W 1 to 1.5"},
+		{"oval", func(l, w, h float64) float64 { return (l + w) / 2 * (l + w) / 2 * h * 0.0062 },
+			"(mean D)² H 0.0062"},
+		{"step", func(l, w, h float64) float64 { return l * w * h * (0.0080 + (l/w-1)/0.5*0.0012) },
+			"L W H 0.0080 to 0.0092 for L:W 1 to 1.5"},
 		{"triangle", func(l, w, h float64) float64 { return l * w * h * 0.0057 }, "L W H 0.0057"},
 	} {
 		_, sol := solveFile(t, "../testdata/plans/"+row.plan+".toml")
 		m := sol.Stone.Measure()
-		closeTo(t, row.plan, m.Carats(diamond), row.formula(m.LengthMM, m.WidthMM, m.DepthMM), stated, row.source+", "+source)
+		closeTo(t, row.plan, m.Carats(diamond), row.formula(m.LengthMM, m.WidthMM, m.DepthMM), stated,
+			row.source+", "+source)
 	}
 }
 

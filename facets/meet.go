@@ -53,7 +53,8 @@ func (v *solver) nearest(t *Tier, name string, index float64) ([]int, bool) {
 	from, to, ok := v.facetsOf(name)
 	if !ok {
 		if !v.failed {
-			v.fault(t, t.Stop.Rule.String(), name, "there is no tier of this name so far", "cut it before this tier")
+			v.fault(t, t.Stop.Rule.String(), name, "there is no tier of this name so far",
+				"cut it before this tier")
 		}
 		return nil, false
 	}
@@ -76,7 +77,8 @@ func (v *solver) nearest(t *Tier, name string, index float64) ([]int, bool) {
 	}
 	if len(near) == 0 {
 		if !v.failed {
-			v.fault(t, t.Stop.Rule.String(), name, "nothing of that tier is left at this point", "stop by a tier that still stands")
+			v.fault(t, t.Stop.Rule.String(), name, "nothing of that tier is left at this point",
+				"stop by a tier that still stands")
 		}
 		return nil, false
 	}
@@ -103,7 +105,8 @@ func (v *solver) marked(t *Tier, m Mark, index float64) ([]int, bool) {
 				return []int{boxFaces + k}, true
 			}
 			if !v.failed {
-				v.fault(t, "meet", m.String(), "nothing of that facet is left at this point", "stop by a facet that still stands")
+				v.fault(t, "meet", m.String(), "nothing of that facet is left at this point",
+					"stop by a facet that still stands")
 			}
 			return nil, false
 		}
@@ -213,7 +216,10 @@ func (v *solver) candidates(groups [][]int, index float64) []string {
 	for k, c := range v.corners.at {
 		held := 0
 		for _, g := range groups {
-			if slices.ContainsFunc(g, func(f int) bool { return slices.Contains(v.corners.faces[k], int32(f)) }) {
+			if slices.ContainsFunc(g, func(f int) bool {
+				return slices.Contains(v.corners.faces[k],
+					int32(f))
+			}) {
 				held++
 			}
 		}
@@ -286,7 +292,8 @@ func (v *solver) meet(i int) bool {
 		got.Index = expand([]float64{best.index}, t.Fold, t.Mirror, v.plan.Gear)
 	}
 	for k, m := range best.misses {
-		v.pend = append(v.pend, Gap{t.Name, got.Index[0], "corner " + markNames(t.Stop.Corners[len(t.Stop.Corners)-len(best.misses)+k]), m})
+		v.pend = append(v.pend, Gap{t.Name, got.Index[0], "corner " +
+			markNames(t.Stop.Corners[len(t.Stop.Corners)-len(best.misses)+k]), m})
 	}
 	// The other facets of the tier have the same angle and depth; where their
 	// own corners can be named in the same words, they must fit as well.
@@ -299,7 +306,8 @@ func (v *solver) meet(i int) bool {
 			corners, found := v.cornersFor(t, marks, index)
 			v.faults = v.faults[:before]
 			if !found {
-				v.fault(t, "meet", markNames(marks), fmt.Sprintf("the facet at index %s finds no such corner", number(index)),
+				v.fault(t, "meet", markNames(marks), fmt.Sprintf("the facet at index %s finds no such corner",
+					number(index)),
 					"give these facets a tier of their own")
 				return false
 			}
@@ -336,7 +344,8 @@ func (v *solver) atCorners(t *Tier, index float64) (attempt, bool) {
 			}
 		}
 		if ways = more; len(ways) > mostAttempts {
-			v.fault(t, "meet", "", "the names fit too many corners", "name each facet with its index, as in P1@6")
+			v.fault(t, "meet", "", "the names fit too many corners",
+				"name each facet with its index, as in P1@6")
 			return attempt{}, false
 		}
 	}
@@ -364,7 +373,8 @@ func (v *solver) atCorners(t *Tier, index float64) (attempt, bool) {
 			for _, w := range ways {
 				for _, c := range w {
 					for k, at := range v.corners.at {
-						if name, whole := v.cornerName(k); whole && v.solid.corners[at] == c && !slices.Contains(names, name) {
+						if name, whole := v.cornerName(k); whole && v.solid.corners[at] == c &&
+							!slices.Contains(names, name) {
 							names = append(names, name)
 						}
 					}
@@ -483,7 +493,7 @@ func (v *solver) normalThrough(t *Tier, corners []mgl64.Vec3) (n mgl64.Vec3, use
 		n = n.Mul(-1)
 	}
 	if math.Abs(n[2]) < 1e-9 || math.Hypot(n[0], n[1]) < 1e-9 {
-		return n, 0, fmt.Sprintf("the facet through these corners is upright or level and does not belong to the %s", t.Side)
+		return n, 0, fmt.Sprintf("the facet through these corners is upright or level and no part of the %s", t.Side)
 	}
 	return n, 3, ""
 }

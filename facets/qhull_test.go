@@ -19,8 +19,10 @@ import (
 )
 
 var (
-	soak       = flag.Bool("soak", false, "run the long checks: 10,000 random solids against Qhull, many more cuts")
-	writeQhull = flag.Bool("write-qhull", false, "write testdata/qhull/plans.csv anew from the qhull-bin of this machine")
+	soak = flag.Bool("soak", false,
+		"run the long checks: 10,000 random solids against Qhull, many more cuts")
+	writeQhull = flag.Bool("write-qhull", false,
+		"write testdata/qhull/plans.csv anew from the qhull-bin of this machine")
 )
 
 // Qhull (Barber, Dobkin, Huhdanpaa, ACM Trans. Math. Softw. 22, 469, 1996) as
@@ -58,7 +60,8 @@ func qhull(planes []Plane, inside mgl64.Vec3) (corners []mgl64.Vec3, volume floa
 		corners = append(corners, c)
 	}
 	hull := exec.Command("qconvex", "Qt", "FS")
-	hull.Stdin = bytes.NewReader(append([]byte("3\n"), bytes.Join(bytes.Split(out, []byte("\n"))[1:], []byte("\n"))...))
+	hull.Stdin = bytes.NewReader(append([]byte("3\n"), bytes.Join(bytes.Split(out, []byte("\n"))[1:],
+		[]byte("\n"))...))
 	out, err = hull.Output()
 	if err != nil {
 		return nil, 0, fmt.Errorf("qconvex: %w", err)
@@ -84,7 +87,8 @@ func planesOf(p *Plan, sol *Solution) []Plane {
 	for i := range p.Tiers {
 		got := &sol.Tiers[i]
 		for _, index := range got.Index {
-			q := tilted(p.Tiers[i].Side, got.Angle.Degrees(), 360*index/float64(p.Gear), got.Distance*sol.Scale)
+			q := tilted(p.Tiers[i].Side, got.Angle.Degrees(), 360*index/float64(p.Gear),
+				got.Distance*sol.Scale)
 			list = append(list, q)
 		}
 	}
@@ -193,7 +197,8 @@ func writeQhullTable(t *testing.T) {
 		t.Fatal(err)
 	}
 	var b strings.Builder
-	fmt.Fprintf(&b, "# Volumes in mm3 of the sample plans' solids by Qhull (%s), Debian package qhull-bin.\n", strings.TrimSpace(string(version)))
+	fmt.Fprintf(&b, "# Volumes in mm3 of the sample plans' solids by Qhull (%s), Debian package qhull-bin.\n",
+		strings.TrimSpace(string(version)))
 	b.WriteString("# Made by: go test ./facets -run TestPlansAgreeWithQhull -write-qhull\n")
 	b.WriteString("# which pipes each solid's half-spaces and an inner point to qhalf Fp, and its corners to qconvex Qt FS.\n")
 	b.WriteString("plan,volume_mm3\n")

@@ -31,7 +31,8 @@ func OpenPlan(path string) (*Plan, error) {
 }
 
 func cannotOpen(path string, err error) error {
-	f := &Fault{File: path, Why: "it cannot be opened: " + err.Error(), Remedy: "check the name and the permissions"}
+	f := &Fault{File: path, Why: "it cannot be opened: " + err.Error(),
+		Remedy: "check the name and the permissions"}
 	switch {
 	case errors.Is(err, fs.ErrNotExist):
 		f.Why, f.Remedy = "there is no such file", "check the name and the folder"
@@ -48,7 +49,8 @@ func cannotOpen(path string, err error) error {
 func ReadPlan(r io.Reader, file string) (*Plan, error) {
 	data, err := io.ReadAll(io.LimitReader(r, MaxPlanBytes+1))
 	if err != nil {
-		return nil, Faults{{File: file, Why: "it cannot be read: " + err.Error(), Remedy: "check the disk and try again"}}
+		return nil, Faults{{File: file, Why: "it cannot be read: " + err.Error(),
+			Remedy: "check the disk and try again"}}
 	}
 	if f := refuse(data); f != nil {
 		f.File = file
@@ -82,11 +84,13 @@ func ReadPlan(r io.Reader, file string) (*Plan, error) {
 func refuse(data []byte) *Fault {
 	switch {
 	case len(data) > MaxPlanBytes:
-		return &Fault{Why: "the file is larger than 1 MiB", Remedy: "a plan is a short text; is this a scan or a picture?"}
+		return &Fault{Why: "the file is larger than 1 MiB",
+			Remedy: "a plan is a short text; is this a scan or a picture?"}
 	case len(bytes.TrimSpace(bytes.TrimPrefix(data, []byte("\ufeff")))) == 0:
 		return &Fault{Why: "the file is empty", Remedy: "start from one of the sample plans"}
 	case bytes.IndexByte(data, 0) >= 0 || !utf8.Valid(data):
-		return &Fault{Why: "this is not text in UTF-8", Remedy: "name a plan file; a scan is recognised by its ending .stl, .obj or .ply"}
+		return &Fault{Why: "this is not text in UTF-8",
+			Remedy: "name a plan file; a scan is recognised by its ending .stl, .obj or .ply"}
 	}
 	return nil
 }
@@ -101,17 +105,20 @@ type reader struct {
 
 func (r *reader) fault(line int, field, got, why, remedy string) {
 	r.faults = append(r.faults, &Fault{
-		File: r.plan.File, Line: line, Tier: r.tier, Field: field, Got: shorten(got), Why: why, Remedy: remedy,
+		File: r.plan.File, Line: line, Tier: r.tier, Field: field, Got: shorten(got), Why: why,
+		Remedy: remedy,
 	})
 }
 
 // The keys of each table, in the order in which they are written.
 func headKeys() []string {
-	return []string{"plan", "name", "author", "notes", "material", "width_mm", "gear", "polish", "axis", "rough"}
+	return []string{"plan", "name", "author", "notes", "material", "width_mm", "gear", "polish", "axis",
+		"rough"}
 }
 
 func tierKeys() []string {
-	return []string{"name", "side", "angle", "index", "fold", "mirror", "distance", "centre", "meet", "level", "edge",
+	return []string{"name", "side", "angle", "index", "fold", "mirror", "distance", "centre", "meet", "level",
+		"edge",
 		"girdle", "table", "culet", "temporary", "stage", "note"}
 }
 
@@ -126,7 +133,8 @@ func (r *reader) read(blocks []*block) {
 			seen, last = true, b
 		case name == "transfer" && b.list:
 			if transfer != nil {
-				r.fault(b.line, "[[transfer]]", "", "the stone is turned twice in a row", "delete one of the two")
+				r.fault(b.line, "[[transfer]]", "", "the stone is turned twice in a row",
+					"delete one of the two")
 			}
 			transfer = &Transfer{Line: b.line, block: b}
 			r.known(b.entries, "transfer", []string{"note"})
@@ -136,7 +144,8 @@ func (r *reader) read(blocks []*block) {
 				}
 			}
 			last = b
-		case b.header[0] == "tier" && !b.list && last != nil && last.header[0] == "tier" && len(b.header) == 2:
+		case b.header[0] == "tier" && !b.list && last != nil && last.header[0] == "tier" &&
+			len(b.header) == 2:
 			last.subs = append(last.subs, b)
 		case name == "material" || name == "axis" || name == "rough":
 			if seen {
@@ -160,12 +169,14 @@ func (r *reader) read(blocks []*block) {
 		}
 	}
 	if transfer != nil {
-		r.fault(transfer.Line, "[[transfer]]", "", "nothing is cut after it", "delete it or add the tiers that follow")
+		r.fault(transfer.Line, "[[transfer]]", "", "nothing is cut after it",
+			"delete it or add the tiers that follow")
 	}
 	for _, b := range append(slices.Clone(r.plan.layout.before), r.plan.layout.after...) {
 		for _, sub := range b.subs {
 			b.entries = append(b.entries, entry{key: "avoid", line: sub.line,
-				value: item{kind: unstable.Array, list: []item{{kind: unstable.InlineTable, table: sub.entries, line: sub.line}}}})
+				value: item{kind: unstable.Array, list: []item{{kind: unstable.InlineTable,
+					table: sub.entries, line: sub.line}}}})
 		}
 		r.headTable(b.header[0], b.line, b.entries)
 	}
@@ -180,7 +191,8 @@ func (r *reader) read(blocks []*block) {
 func (r *reader) known(entries []entry, table string, keys []string) {
 	for _, e := range entries {
 		if !slices.Contains(keys, e.key) {
-			r.fault(e.line, e.key, e.value.written, "a "+table+" has no such key", "it may have "+strings.Join(keys, ", "))
+			r.fault(e.line, e.key, e.value.written, "a "+table+" has no such key",
+				"it may have "+strings.Join(keys, ", "))
 		}
 	}
 }
@@ -200,7 +212,8 @@ func undot(entries []entry) []entry {
 			out[k].value.table = append(out[k].value.table, part)
 			continue
 		}
-		e.key, e.value = top, item{kind: unstable.InlineTable, written: "{...}", table: []entry{part}, line: e.line}
+		e.key, e.value = top, item{kind: unstable.InlineTable, written: "{...}", table: []entry{part},
+			line: e.line}
 		out = append(out, e)
 	}
 	return out
@@ -229,7 +242,8 @@ func (r *reader) head(blocks []*block) {
 			width = true
 			if v, ok := r.num(e); ok {
 				if v < 0.1 || v > 1000 {
-					r.fault(e.line, "width_mm", e.value.written, "no stone is this wide", "give the finished width in mm, 0.1 to 1000")
+					r.fault(e.line, "width_mm", e.value.written, "no stone is this wide",
+						"give the finished width in mm, 0.1 to 1000")
 				}
 				p.WidthMM = v
 			}
@@ -237,7 +251,8 @@ func (r *reader) head(blocks []*block) {
 			gear = true
 			if v, ok := r.whole(e); ok {
 				if v < 3 || v > 1000 {
-					r.fault(e.line, "gear", e.value.written, "no index gear has so many teeth", "give the number of teeth, 3 to 1000")
+					r.fault(e.line, "gear", e.value.written, "no index gear has so many teeth",
+						"give the number of teeth, 3 to 1000")
 				}
 				p.Gear = v
 			}
@@ -247,7 +262,8 @@ func (r *reader) head(blocks []*block) {
 			if e.key == "material" && e.value.kind == unstable.String {
 				p.Material.Key = r.str(e)
 				if p.Material.Key == "" {
-					r.fault(e.line, "material", "", "it is empty", "give the key of a material, as in material = \"corundum\"")
+					r.fault(e.line, "material", "", "it is empty",
+						"give the key of a material, as in material = \"corundum\"")
 				}
 				r.lines["material"] = e.line
 				continue
@@ -261,10 +277,12 @@ func (r *reader) head(blocks []*block) {
 		}
 	}
 	if !version {
-		r.fault(1, "plan", "", "the file does not say that it is a plan", fmt.Sprintf("write plan = %d at its head", PlanVersion))
+		r.fault(1, "plan", "", "the file does not say that it is a plan",
+			fmt.Sprintf("write plan = %d at its head", PlanVersion))
 	}
 	if !width {
-		r.fault(1, "width_mm", "", "the width is missing", "write width_mm = 8.0 or what the stone shall measure")
+		r.fault(1, "width_mm", "", "the width is missing",
+			"write width_mm = 8.0 or what the stone shall measure")
 	}
 	if !gear {
 		r.fault(1, "gear", "", "the index gear is missing", "write gear = 96 or how many teeth yours has")
@@ -278,7 +296,8 @@ func (r *reader) head(blocks []*block) {
 // checkTables reports what the head and the plan's own tables together lack.
 func (p *Plan) checkTables(r *reader) {
 	if _, ok := r.lines["material"]; !ok {
-		r.fault(1, "material", "", "the material is missing", "write material = \"quartz\" or what the stone is made of")
+		r.fault(1, "material", "", "the material is missing",
+			"write material = \"quartz\" or what the stone is made of")
 	}
 }
 
@@ -296,14 +315,16 @@ func (r *reader) headTable(name string, line int, entries []entry) {
 			case "index":
 				if v, ok := r.num(e); ok {
 					if v < 1 || v > 5 {
-						r.fault(e.line, "index", e.value.written, "no transparent gem has this refractive index", "give a number from 1 to 5")
+						r.fault(e.line, "index", e.value.written,
+							"no transparent gem has this refractive index", "give a number from 1 to 5")
 					}
 					p.Material.Index = v
 				}
 			case "density":
 				if v, ok := r.num(e); ok {
 					if v <= 0 || v > 30 {
-						r.fault(e.line, "density", e.value.written, "nothing solid has this density", "give g/cm3, above 0 to 30")
+						r.fault(e.line, "density", e.value.written, "nothing solid has this density",
+							"give g/cm3, above 0 to 30")
 					}
 					p.Material.Density = v
 				}
@@ -320,7 +341,8 @@ func (r *reader) headTable(name string, line int, entries []entry) {
 			switch {
 			case !ok:
 			case math.Abs(v) > 360:
-				r.fault(e.line, e.key, e.value.written, "the angle is out of range", "give degrees, -360 to 360")
+				r.fault(e.line, e.key, e.value.written, "the angle is out of range",
+					"give degrees, -360 to 360")
 			case e.key == "tilt":
 				p.Axis.Tilt = Angle(v) * Degree
 			case e.key == "azimuth":
@@ -352,12 +374,14 @@ func (r *reader) rough(line int, entries []entry) {
 		case "allowance_mm":
 			v, ok := r.num(e)
 			if ok && v < 0 {
-				r.fault(e.line, "allowance_mm", e.value.written, "it is below 0", "give mm to grind away all round")
+				r.fault(e.line, "allowance_mm", e.value.written, "it is below 0",
+					"give mm to grind away all round")
 			}
 			q.AllowanceMM, q.HasAllowance = v, true
 		case "avoid":
 			if e.value.kind != unstable.Array {
-				r.fault(e.line, "avoid", e.value.written, "this is not a list", "write avoid = [ { point_mm = [1, 2, 3], radius_mm = 0.5 } ]")
+				r.fault(e.line, "avoid", e.value.written, "this is not a list",
+					"write avoid = [ { point_mm = [1, 2, 3], radius_mm = 0.5 } ]")
 				continue
 			}
 			for _, it := range e.value.list {
@@ -369,7 +393,8 @@ func (r *reader) rough(line int, entries []entry) {
 	n, ok := want[q.Shape]
 	switch {
 	case !ok:
-		r.fault(line, "shape", q.Shape, "this shape of rough is not known", "it may be box, cylinder, ellipsoid or scan")
+		r.fault(line, "shape", q.Shape, "this shape of rough is not known",
+			"it may be box, cylinder, ellipsoid or scan")
 	case q.Shape == "scan" && q.File == "":
 		r.fault(line, "rough", "", "the scan's file is missing", "add file = \"rough.stl\"")
 	case len(q.SizeMM) != n:
@@ -381,7 +406,8 @@ func (r *reader) rough(line int, entries []entry) {
 func (r *reader) flaw(it item) RoughFlaw {
 	var f RoughFlaw
 	if it.kind != unstable.InlineTable {
-		r.fault(it.line, "avoid", it.written, "this is not a table", "write { point_mm = [1, 2, 3], radius_mm = 0.5 }")
+		r.fault(it.line, "avoid", it.written, "this is not a table",
+			"write { point_mm = [1, 2, 3], radius_mm = 0.5 }")
 		return f
 	}
 	r.known(it.table, "place to avoid", []string{"point_mm", "radius_mm", "normal"})
@@ -404,7 +430,8 @@ func (r *reader) flaw(it item) RoughFlaw {
 		}
 	}
 	if (f.RadiusMM > 0) == (f.Normal != [3]float64{}) {
-		r.fault(it.line, "avoid", "", "it is neither a ball nor a plane", "give radius_mm for a ball, or normal for a plane")
+		r.fault(it.line, "avoid", "", "it is neither a ball nor a plane",
+			"give radius_mm for a ball, or normal for a plane")
 	}
 	return f
 }
@@ -424,7 +451,8 @@ func (r *reader) num(e entry) (float64, bool) {
 		return 0, false
 	}
 	if math.IsNaN(v) || math.IsInf(v, 0) || math.Abs(v) > 1e9 {
-		r.fault(e.line, e.key, e.value.written, "this is not a finite number of sensible size", "write it plainly, as in 41.5")
+		r.fault(e.line, e.key, e.value.written, "this is not a finite number of sensible size",
+			"write it plainly, as in 41.5")
 		return 0, false
 	}
 	return v, true
@@ -441,7 +469,8 @@ func (r *reader) whole(e entry) (int, bool) {
 
 func (r *reader) truth(e entry) bool {
 	if e.value.kind != unstable.Bool {
-		r.fault(e.line, e.key, e.value.written, "this is neither true nor false", "write true or false, without quotes")
+		r.fault(e.line, e.key, e.value.written, "this is neither true nor false",
+			"write true or false, without quotes")
 		return false
 	}
 	return e.value.text == "true"
@@ -502,7 +531,8 @@ func (r *reader) readTier(t *Tier) {
 			k := slices.Index(sideWords(), word)
 			hasSide = true
 			if k < 0 {
-				r.fault(e.line, "side", word, "there is no such side", "it may be "+strings.Join(sideWords(), ", "))
+				r.fault(e.line, "side", word, "there is no such side", "it may be "+strings.Join(sideWords(),
+					", "))
 				k = 0
 				hasSide = false
 			}
@@ -512,7 +542,8 @@ func (r *reader) readTier(t *Tier) {
 				t.HasAngle = true
 				t.Angle = Angle(v) * Degree
 				if v < 0 || v > 90 {
-					r.fault(e.line, "angle", e.value.written, "the angle is impossible", "give 0 to 90 degrees, measured from the girdle plane")
+					r.fault(e.line, "angle", e.value.written, "the angle is impossible",
+						"give 0 to 90 degrees, measured from the girdle plane")
 					t.Angle = 45 * Degree
 				}
 			} else {
@@ -522,18 +553,21 @@ func (r *reader) readTier(t *Tier) {
 			hasIndex, indexLine = true, e.line
 			t.Index = r.nums(e)
 			if len(t.Index) == 0 {
-				r.fault(e.line, "index", e.value.written, "the list holds no index", "give at least one, or delete the key")
+				r.fault(e.line, "index", e.value.written, "the list holds no index",
+					"give at least one, or delete the key")
 			}
 			for _, v := range t.Index {
 				if r.plan.Gear > 0 && (v < 0 || v > float64(r.plan.Gear)) {
-					r.fault(e.line, "index", number(v), "the gear has no such tooth", fmt.Sprintf("give 0 to %d", r.plan.Gear))
+					r.fault(e.line, "index", number(v), "the gear has no such tooth",
+						fmt.Sprintf("give 0 to %d", r.plan.Gear))
 				}
 			}
 		case "fold":
 			if v, ok := r.whole(e); ok {
 				t.Fold = v
 				if v < 1 || v > MaxPlanFacets {
-					r.fault(e.line, "fold", e.value.written, "a facet cannot be repeated so many times", "give 1 or more")
+					r.fault(e.line, "fold", e.value.written, "a facet cannot be repeated so many times",
+						"give 1 or more")
 					t.Fold = 1
 				}
 			}
@@ -548,7 +582,8 @@ func (r *reader) readTier(t *Tier) {
 		case "stage":
 			t.Stage = r.str(e)
 			if !slices.Contains([]string{"preform", "cut", "polish"}, t.Stage) {
-				r.fault(e.line, "stage", t.Stage, "there is no such stage", "it may be preform, cut or polish")
+				r.fault(e.line, "stage", t.Stage, "there is no such stage",
+					"it may be preform, cut or polish")
 			}
 		}
 	}
@@ -559,7 +594,8 @@ func (r *reader) readTier(t *Tier) {
 func (r *reader) stop(t *Tier, e entry) {
 	if t.Stop.Rule != NoStop {
 		r.fault(e.line, e.key, e.value.written,
-			fmt.Sprintf("the tier stops by %s already (line %d)", t.Stop.Rule, t.Stop.Line), "keep one of the two")
+			fmt.Sprintf("the tier stops by %s already (line %d)", t.Stop.Rule, t.Stop.Line),
+			"keep one of the two")
 		return
 	}
 	t.Stop.Rule = Rule(slices.Index(ruleWords[:], e.key))
@@ -569,7 +605,8 @@ func (r *reader) stop(t *Tier, e entry) {
 		r.meet(t, e)
 	case StopEdge:
 		if e.value.kind != unstable.InlineTable {
-			r.fault(e.line, "edge", e.value.written, "this is not a table", "write edge = { with = \"P1\", height = -0.4 }")
+			r.fault(e.line, "edge", e.value.written, "this is not a table",
+				"write edge = { with = \"P1\", height = -0.4 }")
 			return
 		}
 		r.known(e.value.table, "rule edge", []string{"with", "height"})
@@ -585,7 +622,8 @@ func (r *reader) stop(t *Tier, e entry) {
 		}
 		for _, k := range []string{"with", "height"} {
 			if !seen[k] {
-				r.fault(e.line, "edge", "", "its "+k+" is missing", "write edge = { with = \"P1\", height = -0.4 }")
+				r.fault(e.line, "edge", "", "its "+k+" is missing",
+					"write edge = { with = \"P1\", height = -0.4 }")
 			}
 		}
 	default:
@@ -597,11 +635,13 @@ func (r *reader) stop(t *Tier, e entry) {
 		switch t.Stop.Rule {
 		case StopCentre, StopGirdle:
 			if v <= 0 {
-				r.fault(e.line, e.key, e.value.written, "it is not above 0", "give the length in plan units, without a sign")
+				r.fault(e.line, e.key, e.value.written, "it is not above 0",
+					"give the length in plan units, without a sign")
 			}
 		case StopTable, StopCulet:
 			if v <= 0 || v >= 1 {
-				r.fault(e.line, e.key, e.value.written, "it is no share of the width", "give a number between 0 and 1, as in 0.56")
+				r.fault(e.line, e.key, e.value.written, "it is no share of the width",
+					"give a number between 0 and 1, as in 0.56")
 			}
 		}
 	}
@@ -611,7 +651,8 @@ func (r *reader) stop(t *Tier, e entry) {
 // lists.
 func (r *reader) meet(t *Tier, e entry) {
 	if e.value.kind != unstable.Array || len(e.value.list) == 0 {
-		r.fault(e.line, "meet", e.value.written, "this is not a list of planes", "write meet = [\"P1@6\", \"P1@18\", \"G1@12\"]")
+		r.fault(e.line, "meet", e.value.written, "this is not a list of planes",
+			"write meet = [\"P1@6\", \"P1@18\", \"G1@12\"]")
 		return
 	}
 	corners := [][]item{e.value.list}
@@ -625,7 +666,8 @@ func (r *reader) meet(t *Tier, e entry) {
 		var marks []Mark
 		for _, it := range list {
 			if it.kind != unstable.String {
-				r.fault(it.line, "meet", it.written, "this is not the name of a plane", "write it in quotes: \"P1@6\"")
+				r.fault(it.line, "meet", it.written, "this is not the name of a plane",
+					"write it in quotes: \"P1@6\"")
 				continue
 			}
 			marks = append(marks, r.mark(it))
@@ -645,7 +687,8 @@ func (r *reader) mark(it item) Mark {
 	case err != nil || math.IsNaN(v):
 		r.fault(it.line, "meet", it.text, "what follows the @ is no index", "write the tooth there: \"P1@6\"")
 	case r.plan.Gear > 0 && (v < 0 || v > float64(r.plan.Gear)):
-		r.fault(it.line, "meet", it.text, "the gear has no such tooth", fmt.Sprintf("give 0 to %d", r.plan.Gear))
+		r.fault(it.line, "meet", it.text, "the gear has no such tooth", fmt.Sprintf("give 0 to %d",
+			r.plan.Gear))
 	case m.Tier == AxisName:
 		r.fault(it.line, "meet", it.text, "the axis has no index", "write \"axis\" alone")
 	}
@@ -659,7 +702,8 @@ func (r *reader) checkTier(t *Tier, hasSide, hasIndex bool, indexLine int) {
 	case t.Name == "":
 		r.fault(t.Line, "name", "", "the tier has no name", "write name = \"P1\" or what you call it")
 	case t.Name == AxisName || strings.ContainsAny(t.Name, "@\n\r"):
-		r.fault(t.Line, "name", t.Name, "a tier may not have this name", "leave out @ and do not call it axis")
+		r.fault(t.Line, "name", t.Name, "a tier may not have this name",
+			"leave out @ and do not call it axis")
 	}
 	if !hasSide {
 		if !slices.ContainsFunc(t.block.entries, func(e entry) bool { return e.key == "side" }) {
@@ -677,19 +721,25 @@ func (r *reader) checkTier(t *Tier, hasSide, hasIndex bool, indexLine int) {
 	angleLine := t.block.lineOf("angle")
 	switch {
 	case t.Side == Table && t.HasAngle && deg != 0:
-		r.fault(angleLine, "angle", number(deg), "a table is level", "leave the angle out, or put the tier on the crown side")
+		r.fault(angleLine, "angle", number(deg), "a table is level",
+			"leave the angle out, or put the tier on the crown side")
 	case t.Side == Girdle && t.HasAngle && deg != 90:
-		r.fault(angleLine, "angle", number(deg), "a girdle facet stands upright", "leave the angle out, or put the tier on the crown or pavilion side")
+		r.fault(angleLine, "angle", number(deg), "a girdle facet stands upright",
+			"leave the angle out, or put the tier on the crown or pavilion side")
 	case t.Side == Crown && t.HasAngle && deg == 0:
 		r.fault(angleLine, "angle", "0", "a level facet on top is the table", "write side = \"table\"")
 	case (t.Side == Crown || t.Side == Pavilion) && t.HasAngle && deg == 90:
 		r.fault(angleLine, "angle", "90", "an upright facet belongs to the girdle", "write side = \"girdle\"")
 	case t.Stop.Rule == StopTable && t.Side != Table:
-		r.fault(t.Stop.Line, "table", "", "the rule is for the table only", "write side = \"table\" or use another rule")
+		r.fault(t.Stop.Line, "table", "", "the rule is for the table only",
+			"write side = \"table\" or use another rule")
 	case t.Stop.Rule == StopCulet && (t.Side != Pavilion || t.HasAngle && deg != 0):
-		r.fault(t.Stop.Line, "culet", "", "the rule is for a level flat under the pavilion", "write side = \"pavilion\" and leave the angle out")
-	case t.Side == Girdle && (t.Stop.Rule == StopCentre || t.Stop.Rule == StopLevel || t.Stop.Rule == StopGirdle || t.Stop.Rule == StopEdge):
-		r.fault(t.Stop.Line, t.Stop.Rule.String(), "", "an upright facet cannot stop by it", "use distance or meet")
+		r.fault(t.Stop.Line, "culet", "", "the rule is for a level flat under the pavilion",
+			"write side = \"pavilion\" and leave the angle out")
+	case t.Side == Girdle && (t.Stop.Rule == StopCentre || t.Stop.Rule == StopLevel ||
+		t.Stop.Rule == StopGirdle || t.Stop.Rule == StopEdge):
+		r.fault(t.Stop.Line, t.Stop.Rule.String(), "", "an upright facet cannot stop by it",
+			"use distance or meet")
 	}
 	switch {
 	case t.Side == Table || t.Stop.Rule == StopCulet:
@@ -699,18 +749,24 @@ func (r *reader) checkTier(t *Tier, hasSide, hasIndex bool, indexLine int) {
 	}
 	corners := len(t.Stop.Corners)
 	if !t.HasAngle && corners < 2 {
-		r.fault(t.Line, "angle", "", "the angle is missing and cannot be found", "give it, or name two corners in meet")
+		r.fault(t.Line, "angle", "", "the angle is missing and cannot be found",
+			"give it, or name two corners in meet")
 	}
-	if !flat && !hasIndex && !(t.Stop.Rule == StopMeet && corners >= 3 && (!t.HasAngle || t.Side == Girdle)) && !(t.Side == Girdle && corners >= 2) {
-		r.fault(indexLine, "index", "", "the index is missing and cannot be found", "give it, or name three corners in meet and leave the angle out")
+	if !flat && !hasIndex && !(t.Stop.Rule == StopMeet && corners >= 3 && (!t.HasAngle ||
+		t.Side == Girdle)) && !(t.Side == Girdle && corners >= 2) {
+		r.fault(indexLine, "index", "", "the index is missing and cannot be found",
+			"give it, or name three corners in meet and leave the angle out")
 	}
 	for _, c := range t.Stop.Corners {
-		if len(c) < 2 || len(c) < 3 && !slices.ContainsFunc(c, func(m Mark) bool { return m.Tier == AxisName || !m.HasIndex }) {
-			r.fault(t.Stop.Line, "meet", markNames(c), "a corner needs three planes", "name all three; the axis counts for two")
+		if len(c) < 2 || len(c) < 3 && !slices.ContainsFunc(c,
+			func(m Mark) bool { return m.Tier == AxisName || !m.HasIndex }) {
+			r.fault(t.Stop.Line, "meet", markNames(c), "a corner needs three planes",
+				"name all three; the axis counts for two")
 		}
 	}
 	if flat && t.Side != Crown && (len(t.Index) > 1 || t.Fold > 1 || t.Mirror) {
-		r.fault(indexLine, "index", "", "a level flat is one facet wherever the index stands", "give one index or none")
+		r.fault(indexLine, "index", "", "a level flat is one facet wherever the index stands",
+			"give one index or none")
 	}
 }
 
@@ -745,7 +801,8 @@ func (r *reader) together() {
 		t := &p.Tiers[i]
 		r.tier = t.Name
 		if first, ok := at[t.Name]; ok && t.Name != "" {
-			r.fault(t.Line, "name", t.Name, fmt.Sprintf("a tier of this name stands at line %d already", p.Tiers[first].Line),
+			r.fault(t.Line, "name", t.Name, fmt.Sprintf("a tier of this name stands at line %d already",
+				p.Tiers[first].Line),
 				"give each tier its own name")
 		} else {
 			at[t.Name] = i
@@ -760,7 +817,8 @@ func (r *reader) together() {
 			total += len(t.Indices(max(3, p.Gear)))
 		}
 		if total > MaxPlanFacets {
-			r.fault(t.Line, "", "", fmt.Sprintf("here the plan goes beyond %d facets", MaxPlanFacets), "leave some out")
+			r.fault(t.Line, "", "", fmt.Sprintf("here the plan goes beyond %d facets", MaxPlanFacets),
+				"leave some out")
 			return
 		}
 	}
@@ -795,7 +853,8 @@ func (r *reader) refers(at map[string]int, i int, name, written string) {
 		}
 		r.fault(t.Stop.Line, field, written, "there is no tier of this name", "cut so far: "+orNone(names))
 	case k >= i:
-		r.fault(t.Stop.Line, field, written, "that tier is not cut yet", "move this tier after it, or stop by a tier that is cut before")
+		r.fault(t.Stop.Line, field, written, "that tier is not cut yet",
+			"move this tier after it, or stop by a tier that is cut before")
 	}
 }
 

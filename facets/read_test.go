@@ -86,57 +86,86 @@ func TestBadPlans(t *testing.T) {
 		{"too long", "# " + strings.Repeat("x", MaxPlanBytes) + "\n", []string{"0 : larger than 1 MiB"}},
 		{"not TOML", change("width_mm = 6", "width_mm = = 6"), []string{"4 : not TOML"}},
 		{"a key twice", change("gear = 96", "gear = 96\ngear = 64"), []string{"6 : not TOML"}},
-		{"a plan of another version", change("plan = 1", "plan = 2"), []string{"1 : version of the plan file is not known"}},
+		{"a plan of another version", change("plan = 1", "plan = 2"),
+			[]string{"1 : version of the plan file is not known"}},
 		{"nothing but a name", "name = \"x\"\n", []string{"0 : no tier", "1 : does not say that it is a plan",
 			"1 : the width is missing", "1 : the index gear is missing", "1 : the material is missing"}},
-		{"unknown keys, each a fault", change("gear = 96", "gear = 96\ncolour = \"red\"", "angle = 45", "angel = 45\nangle = 45"),
+		{"unknown keys, each a fault", change("gear = 96", "gear = 96\ncolour = \"red\"", "angle = 45",
+			"angel = 45\nangle = 45"),
 			[]string{"6 : a plan has no such key", "17 P1: a tier has no such key"}},
 		{"an unknown table", change("[[transfer]]", "[[turn]]"), []string{"20 : no such table"}},
-		{"a tier in single brackets", strings.Replace(barrel[:strings.Index(barrel, "[[transfer]]")], "[[tier]]", "[tier]", 1)[:strings.Index(barrel, "[[tier]]\nname = \"P1\"")-2],
+		{"a tier in single brackets", strings.Replace(barrel[:strings.Index(barrel, "[[transfer]]")],
+			"[[tier]]", "[tier]", 1)[:strings.Index(barrel, "[[tier]]\nname = \"P1\"")-2],
 			[]string{"0 : no tier", "7 : brackets are single"}},
-		{"an impossible angle", change("angle = 45", "angle = 134"), []string{"16 P1: the angle is impossible"}},
+		{"an impossible angle", change("angle = 45", "angle = 134"),
+			[]string{"16 P1: the angle is impossible"}},
 		{"a negative angle", change("angle = 45", "angle = -3"), []string{"16 P1: the angle is impossible"}},
-		{"an angle that is not a number", change("angle = 45", "angle = nan"), []string{"16 P1: not a finite number"}},
+		{"an angle that is not a number", change("angle = 45", "angle = nan"),
+			[]string{"16 P1: not a finite number"}},
 		{"an angle in quotes", change("angle = 45", "angle = \"45\""), []string{"16 P1: not a number"}},
 		{"an upright pavilion", change("angle = 45", "angle = 90"), []string{"16 P1: belongs to the girdle"}},
-		{"a slanted girdle", change("distance = 1\n", "distance = 1\nangle = 80\n"), []string{"12 G1: stands upright"}},
-		{"a slanted table", change("distance = 0.5", "distance = 0.5\nangle = 3"), []string{"33 T: a table is level"}},
+		{"a slanted girdle", change("distance = 1\n", "distance = 1\nangle = 80\n"),
+			[]string{"12 G1: stands upright"}},
+		{"a slanted table", change("distance = 0.5", "distance = 0.5\nangle = 3"),
+			[]string{"33 T: a table is level"}},
 		{"a level crown facet", change("angle = 30", "angle = 0"), []string{"25 C1: is the table"}},
-		{"two stop rules", change("centre = 1", "centre = 1\ndistance = 0.7"), []string{"19 P1: stops by centre already (line 18)"}},
+		{"two stop rules", change("centre = 1", "centre = 1\ndistance = 0.7"),
+			[]string{"19 P1: stops by centre already (line 18)"}},
 		{"no stop rule", change("centre = 1\n", ""), []string{"13 P1: nothing says how deep"}},
 		{"no angle", change("angle = 45\n", ""), []string{"13 P1: angle is missing"}},
-		{"no index", change("angle = 45\nindex = [0, 24, 48, 72]\n", "angle = 45\n"), []string{"13 P1: index is missing"}},
+		{"no index", change("angle = 45\nindex = [0, 24, 48, 72]\n", "angle = 45\n"),
+			[]string{"13 P1: index is missing"}},
 		{"no side", change("side = \"pavilion\"\n", ""), []string{"13 P1: side is missing"}},
 		{"a side of another word", change("\"pavilion\"", "\"bottom\""), []string{"15 P1: no such side"}},
 		{"a name twice", change("\"C1\"", "\"P1\""), []string{"22 P1: stands at line 13 already"}},
 		{"a name with an @", change("\"C1\"", "\"C@1\""), []string{"22 C@1: may not have this name"}},
-		{"an index beyond the gear", change("[0, 24, 48, 72]", "[0, 24, 48, 97]"), []string{"10 G1: no such tooth"}},
+		{"an index beyond the gear", change("[0, 24, 48, 72]", "[0, 24, 48, 97]"),
+			[]string{"10 G1: no such tooth"}},
 		{"an infinite length", change("centre = 1", "centre = inf"), []string{"18 P1: not a finite number"}},
 		{"a huge length", change("centre = 1", "centre = 1e300"), []string{"18 P1: not a finite number"}},
-		{"a table wider than the stone", change("distance = 0.5", "table = 1.5"), []string{"32 T: no share of the width"}},
-		{"too many facets", change("index = [0, 24, 48, 72]", "index = 1\nfold = 2000\nmirror = true"), []string{"7 G1: beyond 2000 facets"}},
+		{"a table wider than the stone", change("distance = 0.5", "table = 1.5"),
+			[]string{"32 T: no share of the width"}},
+		{"too many facets", change("index = [0, 24, 48, 72]", "index = 1\nfold = 2000\nmirror = true"),
+			[]string{"7 G1: beyond 2000 facets"}},
 		{"a corner of unknown and later tiers", change("centre = 1", "meet = [\"G9\", \"C1@0\", \"G1@0\"]"),
 			[]string{"18 P1: no tier of this name", "18 P1: not cut yet"}},
-		{"a corner of two planes", change("centre = 1", "meet = [\"G1@0\", \"G1@24\"]"), []string{"18 P1: a corner needs three planes"}},
-		{"a corner without an index", change("centre = 1", "meet = [\"G1@x\", \"G1@24\", \"G1@0\"]"), []string{"18 P1: is no index"}},
-		{"an edge without a height", change("level = 0.2", "edge = { with = \"P1\" }"), []string{"27 C1: its height is missing"}},
+		{"a corner of two planes", change("centre = 1", "meet = [\"G1@0\", \"G1@24\"]"),
+			[]string{"18 P1: a corner needs three planes"}},
+		{"a corner without an index", change("centre = 1", "meet = [\"G1@x\", \"G1@24\", \"G1@0\"]"),
+			[]string{"18 P1: is no index"}},
+		{"an edge without a height", change("level = 0.2", "edge = { with = \"P1\" }"),
+			[]string{"27 C1: its height is missing"}},
 		{"turned twice", change("[[transfer]]", "[[transfer]]\n[[transfer]]"), []string{"21 : turned twice"}},
 		{"turned at the end", barrel + "\n[[transfer]]\n", []string{"34 : nothing is cut after it"}},
-		{"a material of no index", change("material = \"quartz\"", "material = { name = \"x\" }"), []string{"3 : refractive index is missing"}},
-		{"a rough of unknown shape", change("gear = 96", "gear = 96\nrough = { shape = \"egg\", size_mm = [1, 2, 3] }"), []string{"6 : this shape of rough"}},
+		{"a material of no index", change("material = \"quartz\"", "material = { name = \"x\" }"),
+			[]string{"3 : refractive index is missing"}},
+		{"a rough of unknown shape", change("gear = 96",
+			"gear = 96\nrough = { shape = \"egg\", size_mm = [1, 2, 3] }"),
+			[]string{"6 : this shape of rough"}},
 		// What only solving finds.
-		{"open below", change("[[tier]]\nname = \"P1\"\nside = \"pavilion\"\nangle = 45\nindex = [0, 24, 48, 72]\ncentre = 1\n\n", ""),
+		{"open below",
+			change("[[tier]]\nname = \"P1\"\nside = \"pavilion\"\nangle = 45\nindex = [0, 24, 48, 72]\ncentre = 1\n\n", ""),
 			[]string{"0 : stays open toward -z (below)"}},
-		{"open at a side", strings.ReplaceAll(barrel, "[0, 24, 48, 72]", "[0, 24, 48]"), []string{"0 : stays open toward -y"}},
-		{"a tier that never touches", change("distance = 0.5", "distance = 5"), []string{"29 T: never touches the stone"}},
-		{"a tier that touches a point only", change("distance = 0.5", "distance = 0.7773502691896257"), []string{"29 T: touches a corner or an edge only"}},
-		{"a tier cut twice", barrel + "[[tier]]\nname = \"U\"\nside = \"table\"\ndistance = 0.5\n", []string{"33 U: lies on a facet that is there already"}},
-		{"a tier that takes all", change("distance = 0.5", "distance = -9"), []string{"29 T: would take the whole stone off"}},
-		{"a finished tier that later cuts remove", change("distance = 0.5", "distance = 0.1"), []string{"22 C1: is taken off by tier \"T\""}},
-		{"a finished girdle cut to a knife edge and beyond", change("level = 0.2", "level = -0.2"), []string{"7 G1: is taken off by tier \"C1\"", "29 T: never touches"}},
-		{"no girdle at the index", change("index = [0, 24, 48, 72]\nlevel", "index = [5, 29, 53, 77]\nlevel"), []string{"27 C1: no girdle facet stands at index 5"}},
-		{"a corner that is not on the stone", change("level = 0.2", "meet = [\"P1@0\", \"P1@24\", \"G1@48\"]"), []string{"27 C1: share no corner on the stone"}},
-		{"a table before the girdle", strings.Replace(barrel, "[[tier]]\nname = \"G1\"", "[[tier]]\nname = \"T0\"\nside = \"table\"\ntable = 0.5\n\n[[tier]]\nname = \"G1\"", 1),
+		{"open at a side", strings.ReplaceAll(barrel, "[0, 24, 48, 72]", "[0, 24, 48]"),
+			[]string{"0 : stays open toward -y"}},
+		{"a tier that never touches", change("distance = 0.5", "distance = 5"),
+			[]string{"29 T: never touches the stone"}},
+		{"a tier that touches a point only", change("distance = 0.5", "distance = 0.7773502691896257"),
+			[]string{"29 T: touches a corner or an edge only"}},
+		{"a tier cut twice", barrel + "[[tier]]\nname = \"U\"\nside = \"table\"\ndistance = 0.5\n",
+			[]string{"33 U: lies on a facet that is there already"}},
+		{"a tier that takes all", change("distance = 0.5", "distance = -9"),
+			[]string{"29 T: would take the whole stone off"}},
+		{"a finished tier that later cuts remove", change("distance = 0.5", "distance = 0.1"),
+			[]string{"22 C1: is taken off by tier \"T\""}},
+		{"a finished girdle cut to a knife edge and beyond", change("level = 0.2", "level = -0.2"),
+			[]string{"7 G1: is taken off by tier \"C1\"", "29 T: never touches"}},
+		{"no girdle at the index", change("index = [0, 24, 48, 72]\nlevel", "index = [5, 29, 53, 77]\nlevel"),
+			[]string{"27 C1: no girdle facet stands at index 5"}},
+		{"a corner that is not on the stone", change("level = 0.2",
+			"meet = [\"P1@0\", \"P1@24\", \"G1@48\"]"), []string{"27 C1: share no corner on the stone"}},
+		{"a table before the girdle", strings.Replace(barrel, "[[tier]]\nname = \"G1\"",
+			"[[tier]]\nname = \"T0\"\nside = \"table\"\ntable = 0.5\n\n[[tier]]\nname = \"G1\"", 1),
 			[]string{"10 T0: the outline is not cut yet"}},
 		{"two faults of solving at once", change("level = 0.2", "meet = [\"P1@0\", \"P1@24\", \"G1@48\"]") +
 			"\n[[tier]]\nname = \"P2\"\nside = \"pavilion\"\nangle = 45\nindex = 12\ndistance = 5\n",
@@ -325,7 +354,8 @@ two
 	if err != nil {
 		t.Fatal(err)
 	}
-	if q.Tiers[2].Note != p.Tiers[2].Note || q.Tiers[2].Transfer == nil || q.Tiers[1].Angle != p.Tiers[1].Angle {
+	if q.Tiers[2].Note != p.Tiers[2].Note || q.Tiers[2].Transfer == nil ||
+		q.Tiers[1].Angle != p.Tiers[1].Angle {
 		t.Errorf("read back %+v", q.Tiers)
 	}
 	if again := written(t, q); again != got {
@@ -340,8 +370,9 @@ func TestWriteAFreshPlan(t *testing.T) {
 		p, sol := solveFile(t, file)
 		fresh := p.Clone()
 		fresh.layout = nil
-		fresh.Rough = &RoughRef{Shape: "box", SizeMM: []float64{12, 11.5, 9}, AllowanceMM: 0.3, HasAllowance: true,
-			Avoid: []RoughFlaw{{PointMM: [3]float64{1, 2, 3}, RadiusMM: 0.5}, {Normal: [3]float64{0, 0, 1}}}}
+		fresh.Rough = &RoughRef{Shape: "box", SizeMM: []float64{12, 11.5, 9}, AllowanceMM: 0.3,
+			HasAllowance: true,
+			Avoid:        []RoughFlaw{{PointMM: [3]float64{1, 2, 3}, RadiusMM: 0.5}, {Normal: [3]float64{0, 0, 1}}}}
 		fresh.Axis = &Axis{Tilt: 12.5 * Degree, Azimuth: 30 * Degree}
 		fresh.Polish = []string{"cerium oxide", "then \"clean\""}
 		for i := range fresh.Tiers {
@@ -370,14 +401,17 @@ func TestWriteAFreshPlan(t *testing.T) {
 
 // The other ways in which TOML writes tables mean the same.
 func TestTablesAnyWay(t *testing.T) {
-	inline := strings.Replace(barrel, "material = \"quartz\"", "material = { name = \"x\", index = 1.6, density = 2.9 }", 1)
-	dotted := strings.Replace(barrel, "material = \"quartz\"", "material.name = \"x\"\nmaterial.index = 1.6\nmaterial.density = 2.9", 1)
+	inline := strings.Replace(barrel, "material = \"quartz\"",
+		"material = { name = \"x\", index = 1.6, density = 2.9 }", 1)
+	dotted := strings.Replace(barrel, "material = \"quartz\"",
+		"material.name = \"x\"\nmaterial.index = 1.6\nmaterial.density = 2.9", 1)
 	table := strings.Replace(strings.Replace(barrel, "material = \"quartz\"\n", "", 1), "gear = 96\n",
 		"gear = 0x60\n\n[material]\nname = \"x\"\nindex = 1.6\ndensity = 2.9\n", 1)
 	edge := strings.Replace(inline, "level = 0.2", "edge = { with = \"G1\", height = 0.2 }", 1)
 	edgeTable := strings.Replace(inline, "level = 0.2", "[tier.edge]\nwith = \"G1\"\nheight = 0.2", 1)
 	want := MaterialRef{Name: "x", Index: 1.6, Density: 2.9}
-	for name, text := range map[string]string{"inline": inline, "dotted": dotted, "table": table, "edge": edge, "edge table": edgeTable} {
+	for name, text := range map[string]string{"inline": inline, "dotted": dotted, "table": table,
+		"edge": edge, "edge table": edgeTable} {
 		p, err := readText(text)
 		if err != nil {
 			t.Errorf("%s: %v", name, err)
@@ -391,7 +425,8 @@ func TestTablesAnyWay(t *testing.T) {
 			t.Errorf("%s: %v", name, err)
 			continue
 		}
-		closeTo(t, name+": volume", s.Volume(), solveText(t, barrel).Stone.Volume(), 1e-12, "the same plan written plainly")
+		closeTo(t, name+": volume", s.Volume(), solveText(t, barrel).Stone.Volume(), 1e-12,
+			"the same plan written plainly")
 		if got := written(t, p); got != text {
 			t.Errorf("%s: %s", name, firstDifference(got, text))
 		}

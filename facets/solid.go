@@ -322,7 +322,10 @@ func (s *solid) across(e [2]int32) (beyond int32, stays bool) {
 			if a != e[1] || ring[(j+1)%len(ring)] != e[0] {
 				continue
 			}
-			goes := slices.ContainsFunc(s.changes, func(c change) bool { return c.face == int32(i) && c.ring == nil })
+			goes := slices.ContainsFunc(s.changes, func(c change) bool {
+				return c.face == int32(i) &&
+					c.ring == nil
+			})
 			return int32(i), !goes
 		}
 	}
@@ -463,7 +466,8 @@ func sound(planes []Plane) error {
 	for _, p := range planes {
 		l := p.Normal.Len()
 		if !(math.Abs(l-1) < 1e-9) || math.IsNaN(p.Distance) || math.IsInf(p.Distance, 0) {
-			return fmt.Errorf("%w: tier %q, index %g: normal %v, distance %g", ErrPlane, p.Tier, p.Index, p.Normal, p.Distance)
+			return fmt.Errorf("%w: tier %q, index %g: normal %v, distance %g", ErrPlane, p.Tier, p.Index,
+				p.Normal, p.Distance)
 		}
 	}
 	return nil

@@ -24,9 +24,12 @@ func randomDirection(r *rand.Rand) mgl64.Vec3 {
 // blockPlanes are the faces of a block with the given half edges.
 func blockPlanes(a, b, c float64) []Plane {
 	return []Plane{
-		{Tier: "x", Normal: mgl64.Vec3{1, 0, 0}, Distance: a}, {Tier: "-x", Normal: mgl64.Vec3{-1, 0, 0}, Distance: a},
-		{Tier: "y", Normal: mgl64.Vec3{0, 1, 0}, Distance: b}, {Tier: "-y", Normal: mgl64.Vec3{0, -1, 0}, Distance: b},
-		{Tier: "z", Normal: mgl64.Vec3{0, 0, 1}, Distance: c}, {Tier: "-z", Normal: mgl64.Vec3{0, 0, -1}, Distance: c},
+		{Tier: "x", Normal: mgl64.Vec3{1, 0, 0}, Distance: a}, {Tier: "-x", Normal: mgl64.Vec3{-1, 0, 0},
+			Distance: a},
+		{Tier: "y", Normal: mgl64.Vec3{0, 1, 0}, Distance: b}, {Tier: "-y", Normal: mgl64.Vec3{0, -1, 0},
+			Distance: b},
+		{Tier: "z", Normal: mgl64.Vec3{0, 0, 1}, Distance: c}, {Tier: "-z", Normal: mgl64.Vec3{0, 0, -1},
+			Distance: c},
 	}
 }
 
@@ -86,12 +89,16 @@ func TestClosedForms(t *testing.T) {
 		{"cube", blockPlanes(1, 1, 1), 8, 24, 8, 12, 6, "arithmetic"},
 		{"cube with one corner cut off at half its edges",
 			append(blockPlanes(1, 1, 1), Plane{Normal: mgl64.Vec3{third, third, third}, Distance: 2 * third}),
-			8 - 1.0/6, 24 - 3*0.5 + math.Sqrt(3)/2, 10, 15, 7, "tetrahedron of legs 1: 1/6; triangle of sides √2: √3/2"},
-		{"block far from the origin", moved(blockPlanes(1, 2, 3), mgl64.Vec3{1000, -2000, 500}), 48, 88, 8, 12, 6, "arithmetic"},
+			8 - 1.0/6, 24 - 3*0.5 + math.Sqrt(3)/2, 10, 15, 7,
+			"tetrahedron of legs 1: 1/6; triangle of sides √2: √3/2"},
+		{"block far from the origin", moved(blockPlanes(1, 2, 3), mgl64.Vec3{1000, -2000, 500}), 48, 88, 8,
+			12, 6, "arithmetic"},
 		{"tiny block", scaled(blockPlanes(1, 2, 3), 1e-12), 48e-36, 88e-24, 8, 12, 6, "arithmetic"},
 		{"huge block", scaled(blockPlanes(1, 2, 3), 1e12), 48e36, 88e24, 8, 12, 6, "arithmetic"},
-		{"octahedron", octahedron(), 4.0 / 3, 8 * math.Sqrt(3) / 2, 6, 12, 8, "two pyramids of base 2 and height 1"},
-		{"sixteen planes to one culet point", sixteenToAPoint(), 16 * math.Tan(math.Pi/16) / 3, math.NaN(), 17, 32, 17,
+		{"octahedron", octahedron(), 4.0 / 3, 8 * math.Sqrt(3) / 2, 6, 12, 8,
+			"two pyramids of base 2 and height 1"},
+		{"sixteen planes to one culet point", sixteenToAPoint(), 16 * math.Tan(math.Pi/16) / 3, math.NaN(),
+			17, 32, 17,
 			"pyramid over a regular 16-gon of inradius 1 and height 1"},
 	} {
 		t.Run(row.name, func(t *testing.T) {
@@ -105,7 +112,8 @@ func TestClosedForms(t *testing.T) {
 				closeTo(t, "surface", s.Measure().SurfaceMM2, row.surface, 1e-12, row.source)
 			}
 			if len(s.Corners) != row.corners || len(s.Edges) != row.edges || len(s.Facets) != row.facets_ {
-				t.Errorf("got %d corners, %d edges, %d facets, want %d, %d, %d (%s)", len(s.Corners), len(s.Edges),
+				t.Errorf("got %d corners, %d edges, %d facets, want %d, %d, %d (%s)", len(s.Corners),
+					len(s.Edges),
 					len(s.Facets), row.corners, row.edges, row.facets_, row.source)
 			}
 		})
@@ -220,7 +228,8 @@ func TestRoundBrilliantClosedConstruction(t *testing.T) {
 		t.Errorf("symmetry %v, want 8-fold with 8 mirrors", y)
 	}
 	// With an octagonal culet: 58 / 48 / 104.
-	s, err = FromPlanes("T53 with culet", append(planes, Plane{Side: Pavilion, Normal: mgl64.Vec3{0, 0, -1}, Distance: 0.8}))
+	s, err = FromPlanes("T53 with culet", append(planes, Plane{Side: Pavilion, Normal: mgl64.Vec3{0, 0, -1},
+		Distance: 0.8}))
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -239,24 +248,30 @@ func TestDegeneratePlanes(t *testing.T) {
 		err    error
 	}{
 		{"the same plane twice", cube(Plane{Normal: mgl64.Vec3{0, 0, 1}, Distance: 1}), 6, nil},
-		{"the same plane to rounding", cube(Plane{Normal: mgl64.Vec3{1e-15, 0, 1}, Distance: 1 + 1e-15}), 6, nil},
+		{"the same plane to rounding", cube(Plane{Normal: mgl64.Vec3{1e-15, 0, 1}, Distance: 1 + 1e-15}), 6,
+			nil},
 		{"a plane through an edge only", cube(Plane{Normal: d, Distance: math.Sqrt2}), 6, nil},
-		{"a plane through an edge to rounding", cube(Plane{Normal: d, Distance: math.Sqrt2 * (1 - 1e-14)}), 6, nil},
+		{"a plane through an edge to rounding", cube(Plane{Normal: d, Distance: math.Sqrt2 * (1 - 1e-14)}), 6,
+			nil},
 		{"a sliver of a micron", cube(Plane{Normal: d, Distance: math.Sqrt2 - 1e-3}), 7, nil},
 		{"a sliver just above the weld", cube(Plane{Normal: d, Distance: math.Sqrt2 - 1e-8}), 7, nil},
 		{"near-parallel planes that cross in the middle of a face",
 			cube(tilted(Crown, 1e-4, 0, 1), tilted(Crown, 1e-4, 180, 1)), 7, nil},
-		{"two planes 1e-9 degrees from parallel", cube(tilted(Crown, 1e-9, 0, 1), tilted(Crown, 1e-9, 180, 1)), 6, nil},
+		{"two planes 1e-9 degrees from parallel", cube(tilted(Crown, 1e-9, 0, 1), tilted(Crown, 1e-9, 180,
+			1)), 6, nil},
 		{"no plane", nil, 0, ErrEmpty},
 		{"one plane", blockPlanes(1, 1, 1)[:1], 0, ErrOpen},
 		{"five sides of a cube", blockPlanes(1, 1, 1)[:5], 0, ErrOpen},
-		{"two planes that exclude each other", cube(Plane{Normal: mgl64.Vec3{0, 0, 1}, Distance: -2}), 0, ErrEmpty},
+		{"two planes that exclude each other", cube(Plane{Normal: mgl64.Vec3{0, 0, 1}, Distance: -2}), 0,
+			ErrEmpty},
 		{"a cube of no size", blockPlanes(0, 0, 0), 0, ErrEmpty},
 		{"a sheet", blockPlanes(1, 1, 1e-9), 0, ErrTangled},
-		{"a normal that is not a number", cube(Plane{Normal: mgl64.Vec3{math.NaN(), 0, 1}, Distance: 1}), 0, ErrPlane},
+		{"a normal that is not a number", cube(Plane{Normal: mgl64.Vec3{math.NaN(), 0, 1}, Distance: 1}), 0,
+			ErrPlane},
 		{"a normal of length 2", cube(Plane{Normal: mgl64.Vec3{0, 0, 2}, Distance: 1}), 0, ErrPlane},
 		{"no normal", cube(Plane{Distance: 1}), 0, ErrPlane},
-		{"an infinite distance", cube(Plane{Normal: mgl64.Vec3{0, 0, 1}, Distance: math.Inf(1)}), 0, ErrPlane},
+		{"an infinite distance", cube(Plane{Normal: mgl64.Vec3{0, 0, 1}, Distance: math.Inf(1)}), 0,
+			ErrPlane},
 	} {
 		t.Run(row.name, func(t *testing.T) {
 			s, err := FromPlanes(row.name, row.planes)
@@ -358,6 +373,7 @@ func ExampleFromPlanes() {
 		fmt.Println(err)
 		return
 	}
-	fmt.Println(len(s.Facets), "facets,", len(s.Corners), "corners,", len(s.Edges), "edges, volume", s.Volume())
+	fmt.Println(len(s.Facets), "facets,", len(s.Corners), "corners,", len(s.Edges), "edges, volume",
+		s.Volume())
 	// Output: 6 facets, 8 corners, 12 edges, volume 8
 }

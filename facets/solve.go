@@ -93,7 +93,8 @@ func (p *Plan) Solution() (*Solution, error) {
 			return v.finish()
 		}
 	}
-	f := &Fault{File: p.File, Why: "the flats cannot be made as wide as the plan wants", Remedy: "cut the table and the culet after the tiers beside them"}
+	f := &Fault{File: p.File, Why: "the flats cannot be made as wide as the plan wants",
+		Remedy: "cut the table and the culet after the tiers beside them"}
 	for i := range p.Tiers {
 		if aims[i] != nil {
 			f.Tier, f.Line, f.Field = p.Tiers[i].Name, p.Tiers[i].Stop.Line, p.Tiers[i].Stop.Rule.String()
@@ -172,10 +173,12 @@ func (p *Plan) check() error {
 	for i := range p.Tiers {
 		t := &p.Tiers[i]
 		if t.HasAngle && !(t.Angle >= 0 && t.Angle <= 90*Degree*(1+1e-12)) {
-			bad(t, "angle", number(t.Angle.Degrees()), "the angle is impossible", "give 0 to 90 degrees, measured from the girdle plane")
+			bad(t, "angle", number(t.Angle.Degrees()), "the angle is impossible",
+				"give 0 to 90 degrees, measured from the girdle plane")
 		}
 		if math.IsNaN(t.Stop.Value) || math.Abs(t.Stop.Value) > 1e9 {
-			bad(t, t.Stop.Rule.String(), number(t.Stop.Value), "this is not a finite number of sensible size", "give a length")
+			bad(t, t.Stop.Rule.String(), number(t.Stop.Value), "this is not a finite number of sensible size",
+				"give a length")
 		}
 		for _, x := range t.Index {
 			if math.IsNaN(x) || math.IsInf(x, 0) {
@@ -185,11 +188,13 @@ func (p *Plan) check() error {
 		if t.Stop.Rule == NoStop {
 			bad(t, "", "", "nothing says how deep the tier is cut", "give it a stop rule")
 		}
-		if t.Stop.Rule == StopMeet && (len(t.Stop.Corners) == 0 || slices.ContainsFunc(t.Stop.Corners, func(c []Mark) bool { return len(c) == 0 })) {
+		if t.Stop.Rule == StopMeet && (len(t.Stop.Corners) == 0 || slices.ContainsFunc(t.Stop.Corners,
+			func(c []Mark) bool { return len(c) == 0 })) {
 			bad(t, "meet", "", "it names no corner", "name three planes")
 		}
 		if t.Side < Pavilion || t.Side > Table {
-			bad(t, "side", fmt.Sprint(int(t.Side)), "there is no such side", "it may be pavilion, girdle, crown or table")
+			bad(t, "side", fmt.Sprint(int(t.Side)), "there is no such side",
+				"it may be pavilion, girdle, crown or table")
 		}
 		if total += max(1, len(t.Index)) * max(1, t.Fold); total > MaxPlanFacets {
 			bad(t, "", "", fmt.Sprintf("the plan has more than %d facets", MaxPlanFacets), "leave some out")
@@ -236,8 +241,9 @@ type solver struct {
 
 func newSolver(p *Plan, unit float64, aims map[int]*aim) *solver {
 	v := &solver{
-		plan: p, unit: unit, aims: aims, solid: newSolid(), corners: cornerList{stale: true}, byName: map[string]int{},
-		tiers: make([]SolvedTier, len(p.Tiers)), first: make([]int, len(p.Tiers)),
+		plan: p, unit: unit, aims: aims, solid: newSolid(), corners: cornerList{stale: true},
+		byName: map[string]int{},
+		tiers:  make([]SolvedTier, len(p.Tiers)), first: make([]int, len(p.Tiers)),
 	}
 	for i := range v.first {
 		v.first[i] = -1
@@ -273,7 +279,8 @@ func (v *solver) run() {
 		return
 	}
 	if left := v.solid.open(); len(left) > 0 {
-		v.faults = append(v.faults, &Fault{File: v.plan.File, Why: "the solid stays open toward " + directions(left),
+		v.faults = append(v.faults, &Fault{File: v.plan.File, Why: "the solid stays open toward " +
+			directions(left),
 			Remedy: "add the tiers that close it there"})
 		return
 	}
@@ -290,7 +297,8 @@ func (v *solver) place(i int) bool {
 		return v.meet(i)
 	}
 	if !t.HasAngle {
-		v.fault(t, "angle", "", "the angle is missing and cannot be found", "give it, or name two corners in meet")
+		v.fault(t, "angle", "", "the angle is missing and cannot be found",
+			"give it, or name two corners in meet")
 		return false
 	}
 	if len(t.Index) == 0 && t.Angle != 0 {
@@ -347,7 +355,8 @@ func (v *solver) stop(t *Tier, angle Angle, index float64) (float64, bool) {
 		return value, true
 	case StopCentre:
 		if cosA < 1e-9 {
-			v.fault(t, "centre", number(t.Stop.Value), "an upright facet never crosses the axis", "use distance or meet")
+			v.fault(t, "centre", number(t.Stop.Value), "an upright facet never crosses the axis",
+				"use distance or meet")
 			return 0, false
 		}
 		return cosA * value, true
@@ -390,7 +399,8 @@ func (v *solver) girdleAt(t *Tier, index float64) (int, bool) {
 		}
 	}
 	if best < 0 && !v.failed {
-		v.fault(t, t.Stop.Rule.String(), number(t.Stop.Value), fmt.Sprintf("no girdle facet stands at index %s", number(index)),
+		v.fault(t, t.Stop.Rule.String(), number(t.Stop.Value),
+			fmt.Sprintf("no girdle facet stands at index %s", number(index)),
 			"use meet, or an index of the girdle; there are "+several(there))
 	}
 	return best, best >= 0
@@ -437,14 +447,17 @@ func (v *solver) edge(t *Tier, sinA, nz, index float64) (float64, bool) {
 	r := math.Hypot(g.normal[0], g.normal[1])
 	switch {
 	case r < 1e-9:
-		v.fault(t, "edge", t.Stop.With, "that tier is level, so its edges all lie at one height", "stop by meet or level")
+		v.fault(t, "edge", t.Stop.With, "that tier is level, so its edges all lie at one height",
+			"stop by meet or level")
 		return 0, false
 	case len(faces) > 1 || teethApart(p.Index, index, float64(v.plan.Gear)) > sameTooth:
-		v.fault(t, "edge", t.Stop.With, fmt.Sprintf("it has no facet at index %s, so the edge would not be level", number(index)),
+		v.fault(t, "edge", t.Stop.With,
+			fmt.Sprintf("it has no facet at index %s, so the edge would not be level", number(index)),
 			"use an index that both tiers have, or stop by meet")
 		return 0, false
 	case math.Abs(r*nz-sinA*g.normal[2]) < 1e-9:
-		v.fault(t, "edge", t.Stop.With, "both tiers have the same slope and make no edge", "change the angle of one")
+		v.fault(t, "edge", t.Stop.With, "both tiers have the same slope and make no edge",
+			"change the angle of one")
 		return 0, false
 	}
 	h := t.Stop.Value / v.unit
@@ -457,7 +470,8 @@ func (v *solver) flat(i int) bool {
 	r := outlineOf(v.solid.fromAbove())
 	if r.length > boxReach/2 {
 		if !v.failed {
-			v.fault(t, t.Stop.Rule.String(), number(t.Stop.Value), "the outline is not cut yet, so the width is not known",
+			v.fault(t, t.Stop.Rule.String(), number(t.Stop.Value),
+				"the outline is not cut yet, so the width is not known",
 				"cut the girdle first")
 		}
 		return false
@@ -465,7 +479,8 @@ func (v *solver) flat(i int) bool {
 	z, ok := v.solid.heightOfFlat(&r, v.aims[i].share*r.width, up(t.Side))
 	if !ok {
 		if !v.failed {
-			v.fault(t, t.Stop.Rule.String(), number(t.Stop.Value), "the stone is nowhere this wide on this side, or not yet closed there",
+			v.fault(t, t.Stop.Rule.String(), number(t.Stop.Value),
+				"the stone is nowhere this wide on this side, or not yet closed there",
 				"cut the main facets of this side first, or ask for a smaller flat")
 		}
 		return false
@@ -510,16 +525,20 @@ func (v *solver) cutTier(i int) {
 		who := several(names)
 		switch how {
 		case misses:
-			v.fault(t, "", "", who+" never touches the stone", "cut it deeper, cut it before the tiers that are in its place, or delete it")
+			v.fault(t, "", "", who+" never touches the stone",
+				"cut it deeper, cut it before the tiers that are in its place, or delete it")
 		case grazes:
-			v.fault(t, "", "", who+" touches a corner or an edge only and takes nothing off", "cut it deeper or delete it")
+			v.fault(t, "", "", who+" touches a corner or an edge only and takes nothing off",
+				"cut it deeper or delete it")
 		case coincides:
-			v.fault(t, "", "", who+" lies on a facet that is there already", "delete one of the two, or mark the earlier one temporary and cut this one deeper")
+			v.fault(t, "", "", who+" lies on a facet that is there already",
+				"delete one of the two, or mark the earlier one temporary and cut this one deeper")
 		case swallows:
 			v.fault(t, "", "", who+" would take the whole stone off", "cut it less deep")
 			v.failed = true
 		case unresolved:
-			v.fault(t, "", "", who+" lies too close to other planes to tell where they meet", "move it apart or make it meet them at a corner")
+			v.fault(t, "", "", who+" lies too close to other planes to tell where they meet",
+				"move it apart or make it meet them at a corner")
 			v.failed = true
 		}
 	}
@@ -544,7 +563,8 @@ func (v *solver) removed() {
 			switch {
 			case len(names) == 0:
 			case to == i:
-				v.fault(t, "", "", several(names)+" is taken off by the other facets of its own tier", "cut the tier less deep, or give fewer indices")
+				v.fault(t, "", "", several(names)+" is taken off by the other facets of its own tier",
+					"cut the tier less deep, or give fewer indices")
 			default:
 				v.fault(t, "", "", fmt.Sprintf("%s is taken off by tier %q", several(names), t2.Name),
 					"mark the tier temporary = true if it shall go, else cut "+t2.Name+" less deep")
@@ -588,7 +608,8 @@ func (v *solver) finish() (*Solution, error) {
 		g.MM *= mm
 		if g.MM > VisibleGap {
 			t := &v.plan.Tiers[v.byName[g.Tier]]
-			v.fault(t, t.Stop.Rule.String(), "", fmt.Sprintf("at index %s the facet misses %s by %.3f mm", number(g.Index), g.With, g.MM),
+			v.fault(t, t.Stop.Rule.String(), "", fmt.Sprintf("at index %s the facet misses %s by %.3f mm",
+				number(g.Index), g.With, g.MM),
 				"give these facets a tier of their own, or mend the angle or the index")
 		} else if g.MM > noteworthyGap {
 			sol.Gaps = append(sol.Gaps, g)

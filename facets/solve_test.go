@@ -50,30 +50,43 @@ func TestStopRules(t *testing.T) {
 	}{
 		{"distance", block + close, "T", 0.3, 0, "as written"},
 		{"centre", block + close, "P", cos(45), 45, "the plane crosses the axis at 1: D = cos A"},
-		{"level", block + tierText("C", "crown", "angle = 30\n"+fourWays+"level = 0.2") + close, "C", sin(30) + 0.2*cos(30), 30,
+		{"level", block + tierText("C", "crown", "angle = 30\n"+fourWays+"level = 0.2") + close, "C",
+			sin(30) + 0.2*cos(30), 30,
 			"through the point (1, 0, 0.2)"},
-		{"girdle over a level edge", block + tierText("C", "crown", "angle = 30\n"+fourWays+"girdle = 0.07") + close, "C",
+		{"girdle over a level edge", block + tierText("C", "crown",
+			"angle = 30\n"+fourWays+"girdle = 0.07") + close, "C",
 			sin(30) + 0.07*cos(30), 30, "the pavilion's edge on the girdle is z = 0"},
-		{"edge with the girdle", block + tierText("C", "crown", "angle = 30\n"+fourWays+"edge = { with = \"G\", height = 0.2 }") + close,
+		{"edge with the girdle", block + tierText("C", "crown",
+			"angle = 30\n"+fourWays+"edge = { with = \"G\", height = 0.2 }") + close,
 			"C", sin(30) + 0.2*cos(30), 30, "the same as level"},
-		{"edge with a pavilion step", block + tierText("Q", "pavilion", "angle = 30\n"+fourWays+"edge = { with = \"P\", height = -0.6 }") + close,
+		{"edge with a pavilion step", block + tierText("Q", "pavilion",
+			"angle = 30\n"+fourWays+"edge = { with = \"P\", height = -0.6 }") + close,
 			"Q", sin(30)*0.4 + 0.6*cos(30), 30, "through the point (0.4, 0, -0.6) of the 45 degree facet"},
 		{"meet a corner", block + tierText("C", "crown", "angle = 30\n"+fourWays+"level = 0.2") + close +
-			tierText("D", "crown", "angle = 20\nindex = [12, 36, 60, 84]\nmeet = [\"C@0\", \"C@24\", \"G@0\"]"), "D",
+			tierText("D", "crown",
+				"angle = 20\nindex = [12, 36, 60, 84]\nmeet = [\"C@0\", \"C@24\", \"G@0\"]"), "D",
 			sin(20)*math.Sqrt2 + 0.2*cos(20), 20, "through the corner (1, 1, 0.2)"},
-		{"meet by names alone", block + tierText("C", "crown", "angle = 30\n"+fourWays+"level = 0.2") + close +
+		{"meet by names alone", block + tierText("C", "crown",
+			"angle = 30\n"+fourWays+"level = 0.2") + close +
 			tierText("D", "crown", "angle = 20\nindex = [12, 36, 60, 84]\nmeet = [\"C\", \"G\"]"), "D",
-			sin(20)*math.Sqrt2 + 0.2*cos(20), 20, "both neighbours are equally near and share the corner (1, 1, 0.2)"},
-		{"meet on the axis", block + tierText("Q", "pavilion", "angle = 40\nindex = [12, 36, 60, 84]\nmeet = [\"P\", \"axis\"]") + close, "Q",
+			sin(20)*math.Sqrt2 + 0.2*cos(20), 20,
+			"both neighbours are equally near and share the corner (1, 1, 0.2)"},
+		{"meet on the axis", block + tierText("Q", "pavilion",
+			"angle = 40\nindex = [12, 36, 60, 84]\nmeet = [\"P\", \"axis\"]") + close, "Q",
 			cos(40), 40, "through the culet point (0, 0, -1)"},
-		{"meet where one plane pierces the axis", block + tierText("Q", "pavilion", "angle = 40\nindex = [12, 36, 60, 84]\nmeet = [\"P@24\", \"axis\"]") + close, "Q",
+		{"meet where one plane pierces the axis", block + tierText("Q", "pavilion",
+			"angle = 40\nindex = [12, 36, 60, 84]\nmeet = [\"P@24\", \"axis\"]") + close, "Q",
 			cos(40), 40, "the axis counts for two planes"},
-		{"table", block + tierText("C", "crown", "angle = 45\n"+fourWays+"level = 0.2") + tierText("T", "table", "table = 0.6"), "T",
+		{"table", block + tierText("C", "crown", "angle = 45\n"+fourWays+"level = 0.2") + tierText("T",
+			"table", "table = 0.6"), "T",
 			0.2 + 0.4, 0, "a roof of 45 degrees from half width 1 to 0.6"},
-		{"culet", block + close + tierText("U", "pavilion", "culet = 0.1"), "U", 0.9, 0, "a roof of 45 degrees from half width 1 to 0.1"},
-		{"table cut back by later facets", block + tierText("C", "crown", "angle = 45\n"+fourWays+"level = 0.2") + tierText("T", "table", "table = 0.6") +
+		{"culet", block + close + tierText("U", "pavilion", "culet = 0.1"), "U", 0.9, 0,
+			"a roof of 45 degrees from half width 1 to 0.1"},
+		{"table cut back by later facets", block + tierText("C", "crown",
+			"angle = 45\n"+fourWays+"level = 0.2") + tierText("T", "table", "table = 0.6") +
 			tierText("D", "crown", "angle = 20\n"+fourWays+"edge = { with = \"C\", height = 0.4 }"), "T",
-			0.4 + 0.2*tan(20), 0, "45 degrees to height 0.4 and half width 0.8, then 20 degrees to half width 0.6"},
+			0.4 + 0.2*tan(20), 0,
+			"45 degrees to height 0.4 and half width 0.8, then 20 degrees to half width 0.6"},
 	} {
 		t.Run(row.name, func(t *testing.T) {
 			p, err := readText(row.text)
@@ -104,12 +117,17 @@ func TestSolvedAngles(t *testing.T) {
 	k, rl := math.Cos(math.Pi/8), 0.25
 	tip := (1 - rl*k) * math.Tan(40.75*degree) // depth of the lower halves' tips
 	text := headOf +
-		tierText("G", "girdle", "index = 3\nfold = 8\nmirror = true\ndistance = "+number(math.Cos(math.Pi/16))) +
-		tierText("P", "pavilion", fmt.Sprintf("angle = 40.75\nindex = 0\nfold = 8\ncentre = %s", number(math.Tan(40.75*degree)))) +
+		tierText("G", "girdle",
+			"index = 3\nfold = 8\nmirror = true\ndistance = "+number(math.Cos(math.Pi/16))) +
+		tierText("P", "pavilion", fmt.Sprintf("angle = 40.75\nindex = 0\nfold = 8\ncentre = %s",
+			number(math.Tan(40.75*degree)))) +
 		// A trial flat marks the height of the tips on the ridges between the mains.
-		tierText("F", "pavilion", fmt.Sprintf("angle = 0\ndistance = %s\ntemporary = true", number((1-math.Hypot(rl, 0)*k)*math.Tan(40.75*degree)))) +
-		tierText("L", "pavilion", "index = 3\nfold = 8\nmirror = true\nmeet = [[\"P@0\", \"G@3\", \"G@93\"], [\"P@0\", \"P@12\", \"F\"]]") +
-		tierText("M", "crown", fmt.Sprintf("angle = 34.5\nindex = 0\nfold = 8\nmeet = [\"P@0\", \"G@3\", \"G@93\"]")) +
+		tierText("F", "pavilion", fmt.Sprintf("angle = 0\ndistance = %s\ntemporary = true",
+			number((1-math.Hypot(rl, 0)*k)*math.Tan(40.75*degree)))) +
+		tierText("L", "pavilion",
+			"index = 3\nfold = 8\nmirror = true\nmeet = [[\"P@0\", \"G@3\", \"G@93\"], [\"P@0\", \"P@12\", \"F\"]]") +
+		tierText("M", "crown",
+			fmt.Sprintf("angle = 34.5\nindex = 0\nfold = 8\nmeet = [\"P@0\", \"G@3\", \"G@93\"]")) +
 		tierText("T", "table", "distance = 0.3")
 	p, err := readText(text)
 	if err != nil {
@@ -137,7 +155,8 @@ func TestSolvedIndex(t *testing.T) {
 		tierText("X", "crown", "angle = 45\nindex = 0\ndistance = 1.06066017177982128\ntemporary = true") +
 		tierText("Y", "crown", "angle = 45\nindex = 24\ndistance = 1.06066017177982128\ntemporary = true") +
 		tierText("Z", "girdle", "index = 12\ndistance = 1.06066017177982128\ntemporary = true") +
-		tierText("C", "crown", "meet = [[\"X\", \"Z\", \"G@0\"], [\"Y\", \"Z\", \"G@24\"], [\"X\", \"Y\", \"T\"]]")
+		tierText("C", "crown",
+			"meet = [[\"X\", \"Z\", \"G@0\"], [\"Y\", \"Z\", \"G@24\"], [\"X\", \"Y\", \"T\"]]")
 	p, err := readText(text)
 	if err != nil {
 		t.Fatal(err)
@@ -147,8 +166,10 @@ func TestSolvedIndex(t *testing.T) {
 		t.Fatal(err)
 	}
 	got := sol.tierOf(p, "C")
-	if want := math.Atan(math.Sqrt2) / degree; math.Abs(got.Angle.Degrees()-want) > 1e-9 || len(got.Index) != 1 || math.Abs(got.Index[0]-12) > 1e-9 {
-		t.Errorf("angle %v, index %v; want %.6f°, 12 (the octahedron's face, atan √2)", got.Angle.Degrees(), got.Index, want)
+	if want := math.Atan(math.Sqrt2) / degree; math.Abs(got.Angle.Degrees()-want) > 1e-9 ||
+		len(got.Index) != 1 || math.Abs(got.Index[0]-12) > 1e-9 {
+		t.Errorf("angle %v, index %v; want %.6f°, 12 (the octahedron's face, atan √2)", got.Angle.Degrees(),
+			got.Index, want)
 	}
 }
 
@@ -160,36 +181,58 @@ func TestMisses(t *testing.T) {
 	crown := tierText("C", "crown", "angle = 30\n"+fourWays+"level = 0.2")
 	table := tierText("T", "table", "distance = 0.4")
 	// The ends stand farther out than the sides.
-	oblong := headOf + tierText("G", "girdle", "index = [24, 72]\ndistance = 1") + tierText("H", "girdle", "index = [0, 48]\ndistance = 1.001") +
+	oblong := headOf + tierText("G", "girdle", "index = [24, 72]\ndistance = 1") + tierText("H", "girdle",
+		"index = [0, 48]\ndistance = 1.001") +
 		tierText("P", "pavilion", "angle = 45\n"+fourWays+"centre = 1") + table
 	for _, row := range []struct{ name, text, tier, why string }{
-		{"two corners beside the index", block + crown + table + tierText("D", "crown", "angle = 50\nindex = 6\nmeet = [\"C@0\", \"C\", \"G\", \"T\"]"),
+		{"two corners beside the index", block + crown + table + tierText("D", "crown",
+			"angle = 50\nindex = 6\nmeet = [\"C@0\", \"C\", \"G\", \"T\"]"),
 			"D", "share no corner on the stone"},
 		{"a tie", block + crown + table + tierText("J", "crown", "angle = 35\nindex = 14\ndistance = 0.84") +
-			tierText("D", "crown", "angle = 25\nindex = 12\nmeet = [\"C\", \"T\", \"J\"]"), "D", "fit several corners that give different cuts"},
+			tierText("D", "crown", "angle = 25\nindex = 12\nmeet = [\"C\", \"T\", \"J\"]"), "D",
+			"fit several corners that give different cuts"},
 		{"a corner beyond the unknowns that misses", block + crown + table +
-			tierText("D", "crown", "angle = 20\nindex = [12]\nmeet = [[\"C@0\", \"C@24\", \"G@0\"], [\"C@48\", \"C@72\", \"T\"]]"),
+			tierText("D", "crown",
+				"angle = 20\nindex = [12]\nmeet = [[\"C@0\", \"C@24\", \"G@0\"], [\"C@48\", \"C@72\", \"T\"]]"),
 			"D", "misses corner C@48 C@72 T by"},
 		{"corners on the wrong side", block + crown + table +
-			tierText("D", "crown", "index = [60]\nmeet = [[\"C@0\", \"C@24\", \"G@0\"], [\"C@0\", \"C@24\", \"T\"]]"), "D", "would need"},
+			tierText("D", "crown",
+				"index = [60]\nmeet = [[\"C@0\", \"C@24\", \"G@0\"], [\"C@0\", \"C@24\", \"T\"]]"), "D",
+			"would need"},
 		{"corners level across the facet", block + crown + table +
-			tierText("D", "crown", "index = [0]\nmeet = [[\"C@0\", \"C@24\", \"G@0\"], [\"C@0\", \"C@72\", \"G@0\"]]"), "D", "every angle fits"},
-		{"no corner at another index", block + tierText("C", "crown", "angle = 30\nindex = [0, 24, 48]\nlevel = 0.2") +
-			tierText("D", "crown", "angle = 20\nindex = [12, 66]\nmeet = [\"C\", \"G\"]") + table, "D", "the facet at index 66 finds no such corner"},
-		{"an edge with a level tier", block + table + tierText("C", "crown", "angle = 30\n"+fourWays+"edge = { with = \"T\", height = 0.2 }"),
+			tierText("D", "crown",
+				"index = [0]\nmeet = [[\"C@0\", \"C@24\", \"G@0\"], [\"C@0\", \"C@72\", \"G@0\"]]"), "D",
+			"every angle fits"},
+		{"no corner at another index", block + tierText("C", "crown",
+			"angle = 30\nindex = [0, 24, 48]\nlevel = 0.2") +
+			tierText("D", "crown", "angle = 20\nindex = [12, 66]\nmeet = [\"C\", \"G\"]") + table, "D",
+			"the facet at index 66 finds no such corner"},
+		{"an edge with a level tier", block + table + tierText("C", "crown",
+			"angle = 30\n"+fourWays+"edge = { with = \"T\", height = 0.2 }"),
 			"C", "that tier is level"},
-		{"an edge between equal slopes", block + crown + tierText("D", "crown", "angle = 30\n"+fourWays+"edge = { with = \"C\", height = 0.3 }") + table,
+		{"an edge between equal slopes", block + crown + tierText("D", "crown",
+			"angle = 30\n"+fourWays+"edge = { with = \"C\", height = 0.3 }") + table,
 			"D", "the same slope"},
-		{"an edge that would not be level", block + crown + tierText("D", "crown", "angle = 20\nindex = [12, 36, 60, 84]\nedge = { with = \"C\", height = 0.3 }") + table,
+		{"an edge that would not be level", block + crown + tierText("D", "crown",
+			"angle = 20\nindex = [12, 36, 60, 84]\nedge = { with = \"C\", height = 0.3 }") + table,
 			"D", "it has no facet at index 12"},
-		{"a facet that is gone", block + tierText("C", "crown", "angle = 30\n"+fourWays+"level = 0.2\ntemporary = true") + tierText("T", "table", "distance = 0.1") +
-			tierText("D", "crown", "angle = 20\nindex = 0\nmeet = [\"C@0\", \"T\", \"G@0\"]"), "D", "nothing of that facet is left"},
-		{"a tier that is gone", block + tierText("C", "crown", "angle = 30\n"+fourWays+"level = 0.2\ntemporary = true") + tierText("T", "table", "distance = 0.1") +
-			tierText("D", "crown", "angle = 20\nindex = 0\nmeet = [\"C\", \"T\", \"G\"]"), "D", "nothing of that tier is left"},
-		{"a girdle left over nothing", headOf + tierText("G", "girdle", fourWays+"distance = 1") + tierText("C", "crown", "angle = 30\n"+fourWays+"girdle = 0.1") + table,
+		{"a facet that is gone", block + tierText("C", "crown",
+			"angle = 30\n"+fourWays+"level = 0.2\ntemporary = true") + tierText("T", "table",
+			"distance = 0.1") +
+			tierText("D", "crown", "angle = 20\nindex = 0\nmeet = [\"C@0\", \"T\", \"G@0\"]"), "D",
+			"nothing of that facet is left"},
+		{"a tier that is gone", block + tierText("C", "crown",
+			"angle = 30\n"+fourWays+"level = 0.2\ntemporary = true") + tierText("T", "table",
+			"distance = 0.1") +
+			tierText("D", "crown", "angle = 20\nindex = 0\nmeet = [\"C\", \"T\", \"G\"]"), "D",
+			"nothing of that tier is left"},
+		{"a girdle left over nothing", headOf + tierText("G", "girdle",
+			fourWays+"distance = 1") + tierText("C", "crown", "angle = 30\n"+fourWays+"girdle = 0.1") + table,
 			"C", "the other side of the girdle is not cut yet"},
-		{"levels that differ", strings.Replace(oblong, "1.001", "1.1", 1) + tierText("C", "crown", "angle = 50\n"+fourWays+"level = 0.2"), "C", "misses its place by the rule level"},
-		{"a fully visible miss", strings.Replace(oblong, "1.001", "1.05", 1) + tierText("C", "crown", "angle = 50\n"+fourWays+"level = 0.2"), "C", "0.038 mm"},
+		{"levels that differ", strings.Replace(oblong, "1.001", "1.1", 1) + tierText("C", "crown",
+			"angle = 50\n"+fourWays+"level = 0.2"), "C", "misses its place by the rule level"},
+		{"a fully visible miss", strings.Replace(oblong, "1.001", "1.05", 1) + tierText("C", "crown",
+			"angle = 50\n"+fourWays+"level = 0.2"), "C", "0.038 mm"},
 	} {
 		t.Run(row.name, func(t *testing.T) {
 			p, err := readText(row.text)
@@ -238,13 +281,16 @@ func TestCornersAreKept(t *testing.T) {
 			continue
 		}
 		a, b := before.Stone, sol.Stone
-		if len(a.Facets) != len(b.Facets) || len(a.Corners) != len(b.Corners) || len(a.Edges) != len(b.Edges) {
-			t.Errorf("%s at %g°: %d facets, %d corners, %d edges; before %d, %d, %d", change.tier, change.angle,
+		if len(a.Facets) != len(b.Facets) || len(a.Corners) != len(b.Corners) ||
+			len(a.Edges) != len(b.Edges) {
+			t.Errorf("%s at %g°: %d facets, %d corners, %d edges; before %d, %d, %d", change.tier,
+				change.angle,
 				len(b.Facets), len(b.Corners), len(b.Edges), len(a.Facets), len(a.Corners), len(a.Edges))
 		}
 		for i := range a.Facets {
 			if len(a.Facets[i].Corners) != len(b.Facets[i].Corners) {
-				t.Errorf("%s at %g°: facet %s has another shape", change.tier, change.angle, facetName(a.Facets[i].Tier, a.Facets[i].Index))
+				t.Errorf("%s at %g°: facet %s has another shape", change.tier, change.angle,
+					facetName(a.Facets[i].Tier, a.Facets[i].Index))
 				break
 			}
 		}
@@ -265,7 +311,8 @@ func TestStretched(t *testing.T) {
 	for _, file := range planFiles(t) {
 		p, before := solveFile(t, file)
 		a := before.Stone.Measure()
-		if a.GirdleHeightMM.Max-a.GirdleHeightMM.Min != 0 && a.GirdleMM.Max-a.GirdleMM.Min > 1e-9 || a.Ratio > 2 {
+		if a.GirdleHeightMM.Max-a.GirdleHeightMM.Min != 0 && a.GirdleMM.Max-a.GirdleMM.Min > 1e-9 ||
+			a.Ratio > 2 {
 			continue // a scalloped rim lies on both sides of the plane that stays, the prism and the rod have no sides
 		}
 		for _, side := range []Side{Pavilion, Crown} {
@@ -286,13 +333,16 @@ func TestStretched(t *testing.T) {
 					crown, pavilion = ratio, 1
 				}
 				closeTo(t, file+": crown height", b.CrownHeightMM, crown*a.CrownHeightMM, 1e-9, "stretch")
-				closeTo(t, file+": pavilion depth", b.PavilionDepthMM, pavilion*a.PavilionDepthMM, 1e-9, "stretch")
+				closeTo(t, file+": pavilion depth", b.PavilionDepthMM, pavilion*a.PavilionDepthMM, 1e-9,
+					"stretch")
 				closeTo(t, file+": girdle", b.GirdleMM.Max, a.GirdleMM.Max, 1e-9, "the rim stays")
 				for i := range p.Tiers {
-					closeTo(t, file+": "+p.Tiers[i].Name+" seen from above", sol.Stone.seenArea(p.Tiers[i].Name),
+					closeTo(t, file+": "+p.Tiers[i].Name+" seen from above",
+						sol.Stone.seenArea(p.Tiers[i].Name),
 						before.Stone.seenArea(p.Tiers[i].Name), 1e-8, "the view from above stays")
 				}
-				if len(sol.Stone.Corners) != len(before.Stone.Corners) || len(sol.Stone.Edges) != len(before.Stone.Edges) {
+				if len(sol.Stone.Corners) != len(before.Stone.Corners) ||
+					len(sol.Stone.Edges) != len(before.Stone.Edges) {
 					t.Errorf("%s, %v × %g: corners or edges changed", file, side, ratio)
 				}
 			}
@@ -317,7 +367,8 @@ func TestStretched(t *testing.T) {
 	want := map[string]float64{"P1": 41, "P2": 42.492, "C2": 37, "C1": 41.907, "C3": 23.095}
 	for i := range q.Tiers {
 		if w, ok := want[q.Tiers[i].Name]; ok && math.Abs(q.Tiers[i].Angle.Degrees()-w) > 5e-4 {
-			t.Errorf("%s became %v, want %g° (printed to a thousandth)", q.Tiers[i].Name, q.Tiers[i].Angle.Degrees(), w)
+			t.Errorf("%s became %v, want %g° (printed to a thousandth)", q.Tiers[i].Name,
+				q.Tiers[i].Angle.Degrees(), w)
 		}
 	}
 	for _, bad := range []float64{0, -1, math.NaN(), math.Inf(1)} {
@@ -358,9 +409,11 @@ func TestPlanUnits(t *testing.T) {
 				t.Errorf("%s × %g: %v", file, unit, err)
 				continue
 			}
-			closeTo(t, fmt.Sprintf("%s × %g: volume", filepath.Base(file), unit), got.Stone.Volume(), sol.Stone.Volume(), 1e-10, "scaling")
+			closeTo(t, fmt.Sprintf("%s × %g: volume", filepath.Base(file), unit), got.Stone.Volume(),
+				sol.Stone.Volume(), 1e-10, "scaling")
 			if len(got.Stone.Corners) != len(sol.Stone.Corners) {
-				t.Errorf("%s × %g: %d corners, want %d", file, unit, len(got.Stone.Corners), len(sol.Stone.Corners))
+				t.Errorf("%s × %g: %d corners, want %d", file, unit, len(got.Stone.Corners),
+					len(sol.Stone.Corners))
 			}
 		}
 	}
@@ -390,7 +443,8 @@ func TestTurnedPlan(t *testing.T) {
 			t.Errorf("%s: %v", file, err)
 			continue
 		}
-		closeTo(t, filepath.Base(file)+": volume", got.Stone.Volume(), sol.Stone.Volume(), 1e-11, "turning keeps the volume")
+		closeTo(t, filepath.Base(file)+": volume", got.Stone.Volume(), sol.Stone.Volume(), 1e-11,
+			"turning keeps the volume")
 		turn := mgl64.Rotate3DZ(azimuth(5, p.Gear).Radians())
 		for i, f := range sol.Stone.Facets {
 			if d := turn.Mul3x1(f.Normal).Sub(got.Stone.Facets[i].Normal).Len(); d > 1e-9 {
@@ -414,7 +468,8 @@ func TestSymmetry(t *testing.T) {
 		p, sol := solveFile(t, "../testdata/plans/"+row.plan+".toml")
 		y := sol.Stone.Symmetry()
 		if y.Order != row.order || len(y.Mirrors) != row.mirrors {
-			t.Errorf("%s: order %d with %d mirrors, want %d with %d", row.plan, y.Order, len(y.Mirrors), row.order, row.mirrors)
+			t.Errorf("%s: order %d with %d mirrors, want %d with %d", row.plan, y.Order, len(y.Mirrors),
+				row.order, row.mirrors)
 			continue
 		}
 		for k, m := range y.Mirrors {
@@ -430,7 +485,8 @@ func TestSymmetry(t *testing.T) {
 	p, _ := solveFile(t, "../testdata/plans/round.toml")
 	p.Tiers[0].Index[0] = 0.5
 	p.Tiers = p.Tiers[:2]
-	p.Tiers = append(p.Tiers, Tier{Name: "T", Side: Table, HasAngle: true, Stop: Stop{Rule: StopDistance, Value: 0.2}})
+	p.Tiers = append(p.Tiers, Tier{Name: "T", Side: Table, HasAngle: true, Stop: Stop{Rule: StopDistance,
+		Value: 0.2}})
 	sol, err := p.Solution()
 	if err != nil {
 		t.Fatal(err)
@@ -438,7 +494,8 @@ func TestSymmetry(t *testing.T) {
 	if y := sol.Stone.Symmetry(); y.Order != 1 || len(y.Mirrors) > 0 {
 		t.Errorf("a facet half a tooth off leaves order %d and %d mirrors", y.Order, len(y.Mirrors))
 	}
-	if off := p.OffTeeth(sol); len(off) != 1 || off[0].Tier != "P1" || math.Abs(math.Abs(off[0].Off.Degrees())-1.875) > 1e-9 {
+	if off := p.OffTeeth(sol); len(off) != 1 || off[0].Tier != "P1" ||
+		math.Abs(math.Abs(off[0].Off.Degrees())-1.875) > 1e-9 {
 		t.Errorf("off teeth %v, want P1@0.5 by 1.875°", off)
 	}
 }
@@ -469,7 +526,8 @@ func TestOtherGear(t *testing.T) {
 	if got, err = q.Solution(); err != nil {
 		t.Fatal(err)
 	}
-	closeTo(t, "volume on 80 teeth", got.Stone.Volume(), sol.Stone.Volume(), 1e-12, "fractions keep the stone")
+	closeTo(t, "volume on 80 teeth", got.Stone.Volume(), sol.Stone.Volume(), 1e-12,
+		"fractions keep the stone")
 	q, _, err = p.ToGear(80, true)
 	if err != nil {
 		t.Fatal(err)
@@ -477,8 +535,10 @@ func TestOtherGear(t *testing.T) {
 	if got, err = q.Solution(); err != nil {
 		t.Fatal(err)
 	}
-	if y := got.Stone.Symmetry(); y.Order != 8 || len(y.Mirrors) != 8 || got.Stone.Volume() == sol.Stone.Volume() {
-		t.Errorf("snapped to 80 teeth: order %d, %d mirrors, the same volume: %v", y.Order, len(y.Mirrors), got.Stone.Volume() == sol.Stone.Volume())
+	if y := got.Stone.Symmetry(); y.Order != 8 || len(y.Mirrors) != 8 ||
+		got.Stone.Volume() == sol.Stone.Volume() {
+		t.Errorf("snapped to 80 teeth: order %d, %d mirrors, the same volume: %v", y.Order, len(y.Mirrors),
+			got.Stone.Volume() == sol.Stone.Volume())
 	}
 	if _, _, err := p.ToGear(1, false); err == nil {
 		t.Error("a gear of one tooth passed")
@@ -504,7 +564,8 @@ func TestFoldAndMirror(t *testing.T) {
 	} {
 		tier := Tier{Index: row.index, Fold: row.fold, Mirror: row.mirror}
 		if got := fmt.Sprint(tier.Indices(row.gear)); got != row.want {
-			t.Errorf("%v fold %d mirror %v on %d: got %s, want %s", row.index, row.fold, row.mirror, row.gear, got, row.want)
+			t.Errorf("%v fold %d mirror %v on %d: got %s, want %s", row.index, row.fold, row.mirror, row.gear,
+				got, row.want)
 		}
 	}
 }
@@ -540,7 +601,10 @@ func TestSolveUnreadPlans(t *testing.T) {
 		{"edge with nothing", func(p *Plan) { p.Tiers[2].Stop = Stop{Rule: StopEdge} }},
 		{"no angle", func(p *Plan) { p.Tiers[1].HasAngle = false }},
 		{"no index", func(p *Plan) { p.Tiers[1].Index = nil }},
-		{"an upright crown with a centre point", func(p *Plan) { p.Tiers[2].Angle, p.Tiers[2].Stop = 90*Degree, Stop{Rule: StopCentre, Value: 1} }},
+		{"an upright crown with a centre point", func(p *Plan) {
+			p.Tiers[2].Angle,
+				p.Tiers[2].Stop = 90*Degree, Stop{Rule: StopCentre, Value: 1}
+		}},
 		{"3,000 facets", func(p *Plan) { p.Tiers[1].Fold = 3000 }},
 		{"all angles zero", func(p *Plan) {
 			for i := range p.Tiers {
@@ -572,6 +636,7 @@ func ExamplePlan_Solve() {
 		return
 	}
 	m := s.Measure()
-	fmt.Printf("%s: %d facets, table %.1f %%, depth %.1f %%\n", s.Name, len(s.Facets), m.TablePercent, m.DepthPercent)
+	fmt.Printf("%s: %d facets, table %.1f %%, depth %.1f %%\n", s.Name, len(s.Facets), m.TablePercent,
+		m.DepthPercent)
 	// Output: Harbour Eight: 73 facets, table 56.1 %, depth 62.1 %
 }

@@ -15,7 +15,8 @@ import (
 func (p *Plan) Stretched(side Side, ratio float64) (*Plan, error) {
 	if side != Pavilion && side != Crown || !(ratio > 0) || math.IsInf(ratio, 0) {
 		return nil, Faults{{File: p.File, Field: "stretch", Got: fmt.Sprintf("%v by %g", side, ratio),
-			Why: "only the pavilion or the crown can be stretched, by a number above 0", Remedy: "give one of them and a number near 1"}}
+			Why:    "only the pavilion or the crown can be stretched, by a number above 0",
+			Remedy: "give one of them and a number near 1"}}
 	}
 	sol, err := p.Solution()
 	if err != nil {

@@ -80,7 +80,10 @@ func newPlaneSet(s *Stone, reach float64) *planeSet {
 	for i := range p.byZ {
 		p.byZ[i] = i
 	}
-	slices.SortFunc(p.byZ, func(a, b int) int { return cmp.Compare(s.Facets[a].Normal[2], s.Facets[b].Normal[2]) })
+	slices.SortFunc(p.byZ, func(a, b int) int {
+		return cmp.Compare(s.Facets[a].Normal[2],
+			s.Facets[b].Normal[2])
+	})
 	return p
 }
 
@@ -97,7 +100,8 @@ func (p *planeSet) fewest() []int {
 		var set []int
 		for _, j := range p.byZ {
 			g := &p.stone.Facets[j]
-			if math.Abs(f.Normal[2]-g.Normal[2]) < sameFacet && math.Abs(f.Distance-g.Distance) < sameFacet*p.reach {
+			if math.Abs(f.Normal[2]-g.Normal[2]) < sameFacet &&
+				math.Abs(f.Distance-g.Distance) < sameFacet*p.reach {
 				set = append(set, j)
 				used[j] = true
 			}
@@ -114,7 +118,8 @@ func (p *planeSet) holds(move func(mgl64.Vec3) mgl64.Vec3) bool {
 	for i := range p.stone.Facets {
 		f := &p.stone.Facets[i]
 		n := move(f.Normal)
-		from := sort.Search(len(p.byZ), func(k int) bool { return p.stone.Facets[p.byZ[k]].Normal[2] >= n[2]-sameFacet })
+		from := sort.Search(len(p.byZ),
+			func(k int) bool { return p.stone.Facets[p.byZ[k]].Normal[2] >= n[2]-sameFacet })
 		found := false
 		for k := from; k < len(p.byZ) && !found; k++ {
 			g := &p.stone.Facets[p.byZ[k]]
@@ -140,7 +145,8 @@ type OffTooth struct {
 
 // String tells it to the cutter.
 func (o OffTooth) String() string {
-	return fmt.Sprintf("%s: tooth %d is %.3f° off", facetName(o.Tier, o.Index), o.Nearest, math.Abs(o.Off.Degrees()))
+	return fmt.Sprintf("%s: tooth %d is %.3f° off", facetName(o.Tier, o.Index), o.Nearest,
+		math.Abs(o.Off.Degrees()))
 }
 
 // OffTeeth returns the facets of a solved plan whose index the gear cannot
@@ -154,7 +160,8 @@ func (p *Plan) OffTeeth(sol *Solution) []OffTooth {
 			continue
 		}
 		for _, x := range sol.Tiers[i].Index {
-			if o := offTooth(t.Name, x, p.Gear); math.Abs(float64(o.Off)) > sameTooth*2*math.Pi/float64(p.Gear) {
+			if o := offTooth(t.Name, x,
+				p.Gear); math.Abs(float64(o.Off)) > sameTooth*2*math.Pi/float64(p.Gear) {
 				list = append(list, o)
 			}
 		}
@@ -173,7 +180,8 @@ func offTooth(tier string, index float64, gear int) OffTooth {
 // tooth, and with them the stone's shape.
 func (p *Plan) ToGear(gear int, snap bool) (*Plan, []OffTooth, error) {
 	if gear < 3 || gear > 1000 {
-		return nil, nil, Faults{{File: p.File, Field: "gear", Got: fmt.Sprint(gear), Why: "no index gear has so many teeth",
+		return nil, nil, Faults{{File: p.File, Field: "gear", Got: fmt.Sprint(gear),
+			Why:    "no index gear has so many teeth",
 			Remedy: "give the number of teeth, 3 to 1000"}}
 	}
 	sol, err := p.Solution()
@@ -201,7 +209,8 @@ func (p *Plan) ToGear(gear int, snap bool) (*Plan, []OffTooth, error) {
 		at[t.Name] = i
 		if sol.Tiers[i].Angle != 0 {
 			for _, x := range sol.Tiers[i].Index {
-				if o := offTooth(t.Name, x*ratio, gear); math.Abs(float64(o.Off)) > sameTooth*2*math.Pi/float64(gear) {
+				if o := offTooth(t.Name, x*ratio,
+					gear); math.Abs(float64(o.Off)) > sameTooth*2*math.Pi/float64(gear) {
 					off = append(off, o)
 				}
 			}
@@ -225,7 +234,10 @@ func (p *Plan) ToGear(gear int, snap bool) (*Plan, []OffTooth, error) {
 				c[k].Index = move(x)
 				j := at[c[k].Tier]
 				old, now := sol.Tiers[j].Index, q.Tiers[j].Indices(gear)
-				if n := slices.IndexFunc(old, func(y float64) bool { return teethApart(x, y, float64(p.Gear)) < sameTooth }); n >= 0 &&
+				if n := slices.IndexFunc(old, func(y float64) bool {
+					return teethApart(x, y,
+						float64(p.Gear)) < sameTooth
+				}); n >= 0 &&
 					len(old) == len(now) && len(q.Tiers[j].Index) > 0 {
 					c[k].Index = now[n]
 				}

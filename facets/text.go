@@ -64,7 +64,8 @@ type item struct {
 func splitBlocks(data []byte, file string) ([]*block, error) {
 	var whole map[string]any
 	if err := toml.Unmarshal(data, &whole); err != nil {
-		f := &Fault{File: file, Why: "this is not TOML", Remedy: "see the sample plans for how one is written"}
+		f := &Fault{File: file, Why: "this is not TOML",
+			Remedy: "see the sample plans for how one is written"}
 		var de *toml.DecodeError
 		if errors.As(err, &de) {
 			f.Line, _ = de.Position()
@@ -114,7 +115,8 @@ func splitBlocks(data []byte, file string) ([]*block, error) {
 				}
 				end = int(it.Node().Raw.Offset + it.Node().Raw.Length)
 			}
-			blocks = append(blocks, &block{header: name, list: e.Kind == unstable.ArrayTable, line: lines.number(from)})
+			blocks = append(blocks, &block{header: name, list: e.Kind == unstable.ArrayTable,
+				line: lines.number(from)})
 			starts = append(starts, lines.start(from))
 		}
 	}

@@ -238,7 +238,8 @@ func (t *Tier) pairs() []pair {
 		}
 		list = append(list, pair{"meet", text})
 	case StopEdge:
-		list = append(list, pair{"edge", inline([]pair{{"with", quote(s.With)}, {"height", number(s.Value)}})})
+		list = append(list, pair{"edge", inline([]pair{{"with", quote(s.With)}, {"height",
+			number(s.Value)}})})
 	default:
 		list = append(list, pair{s.Rule.String(), number(s.Value)})
 	}
