@@ -95,7 +95,7 @@ func TestClosedForms(t *testing.T) {
 			12, 6, "arithmetic"},
 		{"tiny block", scaled(blockPlanes(1, 2, 3), 1e-12), 48e-36, 88e-24, 8, 12, 6, "arithmetic"},
 		{"huge block", scaled(blockPlanes(1, 2, 3), 1e12), 48e36, 88e24, 8, 12, 6, "arithmetic"},
-		{"octahedron", octahedron(), 4.0 / 3, 8 * math.Sqrt(3) / 2, 6, 12, 8,
+		{"octahedron", eightPlanes(), 4.0 / 3, 8 * math.Sqrt(3) / 2, 6, 12, 8,
 			"two pyramids of base 2 and height 1"},
 		{"sixteen planes to one culet point", sixteenToAPoint(), 16 * math.Tan(math.Pi/16) / 3, math.NaN(),
 			17, 32, 17,
@@ -134,7 +134,7 @@ func scaled(planes []Plane, by float64) []Plane {
 	return planes
 }
 
-func octahedron() []Plane {
+func eightPlanes() []Plane {
 	var list []Plane
 	c := 1 / math.Sqrt(3)
 	for i := range 8 {
