@@ -24,9 +24,10 @@ const MMPerPoint = 25.4 / 72
 
 // typeface is one weight of the type.
 type typeface struct {
-	ttf  []byte
-	font *sfnt.Font
-	em   fixed.Int26_6 // units per em, for measures free of rounding
+	ttf      []byte
+	font     *sfnt.Font
+	em       fixed.Int26_6    // units per em, for measures free of rounding
+	advances map[rune]float64 // of every letter that it holds, as a share of the size
 }
 
 // Both weights are parsed once, when first asked for. They are read only afterwards;
@@ -36,12 +37,24 @@ var (
 	bold    = sync.OnceValue(func() *typeface { return parse(gobold.TTF) })
 )
 
+// parse reads a typeface of the basic multilingual plane.
 func parse(ttf []byte) *typeface {
 	f, err := sfnt.Parse(ttf)
 	if err != nil {
 		panic(err) // the bytes are part of the program
 	}
-	return &typeface{ttf: ttf, font: f, em: fixed.I(int(f.UnitsPerEm()))}
+	t := &typeface{ttf: ttf, font: f, em: fixed.I(int(f.UnitsPerEm())), advances: map[rune]float64{}}
+	var b sfnt.Buffer
+	for r := rune(0); r <= 0xffff; r++ {
+		g, err := f.GlyphIndex(&b, r)
+		if err != nil || g == 0 {
+			continue
+		}
+		if a, err := f.GlyphAdvance(&b, g, t.em, font.HintingNone); err == nil {
+			t.advances[r] = float64(a) / float64(t.em)
+		}
+	}
+	return t
 }
 
 func (t Type) face() *typeface {
@@ -52,33 +65,19 @@ func (t Type) face() *typeface {
 }
 
 // holds reports whether the typeface has the letter.
-func (f *typeface) holds(b *sfnt.Buffer, r rune) bool {
-	g, err := f.font.GlyphIndex(b, r)
-	return err == nil && g != 0
+func (f *typeface) holds(r rune) bool {
+	_, ok := f.advances[r]
+	return ok
 }
 
 // Width returns the width of a line of clean text, mm.
 func (t Type) Width(words string) float64 {
 	f := t.face()
-	var b sfnt.Buffer
-	units := 0.0
+	sum := 0.0
 	for _, r := range words {
-		units += f.advance(&b, r)
+		sum += f.advances[r]
 	}
-	return units * t.Size * MMPerPoint
-}
-
-// advance returns the width of a letter as a share of the size.
-func (f *typeface) advance(b *sfnt.Buffer, r rune) float64 {
-	g, err := f.font.GlyphIndex(b, r)
-	if err != nil {
-		return 0
-	}
-	a, err := f.font.GlyphAdvance(b, g, f.em, font.HintingNone)
-	if err != nil {
-		return 0
-	}
-	return float64(a) / float64(f.em)
+	return sum * t.Size * MMPerPoint
 }
 
 // Height returns the height of a capital letter, mm.
@@ -94,7 +93,6 @@ func (t Type) Leading() float64 { return 1.25 * t.Size * MMPerPoint }
 // normalisation form C), no control or formatting characters, and Missing for what
 // the typeface does not hold. It reports whether anything was missing.
 func Clean(words string) (clean string, missing bool) {
-	var b sfnt.Buffer
 	var out strings.Builder
 	lacked := false // the mark goes with the letter before it
 	for _, r := range norm.NFC.String(strings.ToValidUTF8(words, "\ufffd")) {
@@ -103,7 +101,7 @@ func Clean(words string) (clean string, missing bool) {
 			out.WriteByte(' ')
 			lacked = false
 		case unicode.IsControl(r) || unicode.Is(unicode.Cf, r):
-		case r != unicode.ReplacementChar && regular().holds(&b, r):
+		case r != unicode.ReplacementChar && regular().holds(r):
 			out.WriteRune(r)
 			lacked = false
 		case unicode.IsMark(r) && lacked:
@@ -169,9 +167,14 @@ func (t Type) Cut(words string, width float64) string {
 	if t.Width(clean) <= width {
 		return clean
 	}
-	runes := []rune(clean)
-	for len(runes) > 0 && t.Width(string(runes)+"…") > width {
-		runes = runes[:len(runes)-1]
+	room := width - t.Width("…")
+	end, used, f := 0, 0.0, t.face()
+	for i, r := range clean {
+		if used > room {
+			break
+		}
+		end = i
+		used += f.advances[r] * t.Size * MMPerPoint
 	}
-	return strings.TrimRight(string(runes), " ") + "…"
+	return strings.TrimRight(clean[:end], " ") + "…"
 }

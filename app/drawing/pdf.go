@@ -3,8 +3,11 @@ package drawing
 import (
 	"bytes"
 	"fmt"
+	"image"
+	"image/draw"
 	"image/png"
 	"io"
+	"strings"
 	"time"
 
 	"codeberg.org/go-pdf/fpdf"
@@ -42,11 +45,11 @@ func (d *Document) PDF(w io.Writer) error {
 	f.SetModificationDate(date)
 	f.SetCatalogSort(true)
 	f.SetLang("en")
-	f.SetTitle(d.Title, true)
-	f.SetAuthor(d.Author, true)
-	f.SetSubject(d.Subject, true)
-	f.SetCreator(d.Creator, true)
-	f.SetProducer(d.Creator, true)
+	f.SetTitle(plane0(d.Title), true)
+	f.SetAuthor(plane0(d.Author), true)
+	f.SetSubject(plane0(d.Subject), true)
+	f.SetCreator(plane0(d.Creator), true)
+	f.SetProducer(plane0(d.Creator), true)
 	f.SetMargins(0, 0, 0)
 	f.SetAutoPageBreak(false, 0)
 	f.SetCellMargin(0)
@@ -56,7 +59,7 @@ func (d *Document) PDF(w io.Writer) error {
 	f.SetLineJoinStyle("round")
 	var files []fpdf.Attachment
 	for _, a := range d.Attachments {
-		files = append(files, fpdf.Attachment{Content: a.Content, Filename: a.Name, Description: a.About})
+		files = append(files, fpdf.Attachment{Content: a.Content, Filename: plane0(a.Name), Description: plane0(a.About)})
 	}
 	f.SetAttachments(files)
 	out := &pdfPainter{f: f}
@@ -79,9 +82,9 @@ const family = "Go"
 
 // pdfPainter draws on the current page of a PDF.
 type pdfPainter struct {
-	f        *fpdf.Fpdf
-	pictures int
-	err      error
+	f      *fpdf.Fpdf
+	widths map[int]bool // of the pictures so far, pixels
+	err    error
 }
 
 // style sets colours and line and returns the library's word for what to draw.
@@ -137,14 +140,53 @@ func (p *pdfPainter) text(m *Text) {
 }
 
 func (p *pdfPainter) picture(m *Picture) {
+	img, grown := p.unique(m.Image)
 	var b bytes.Buffer
-	if err := (&png.Encoder{CompressionLevel: png.BestCompression}).Encode(&b, m.Image); err != nil {
+	if err := (&png.Encoder{CompressionLevel: png.BestCompression}).Encode(&b, img); err != nil {
 		p.err = err
 		return
 	}
-	p.pictures++
-	name := fmt.Sprintf("picture%d", p.pictures)
+	name := fmt.Sprintf("picture%d", len(p.widths))
 	options := fpdf.ImageOptions{ImageType: "PNG"}
 	p.f.RegisterImageOptionsReader(name, options, &b)
-	p.f.ImageOptions(name, m.At.X, m.At.Y, m.Width, m.Height, false, options, 0, "")
+	p.f.ClipRect(m.At.X, m.At.Y, m.Width, m.Height, false)
+	p.f.ImageOptions(name, m.At.X, m.At.Y, m.Width*grown, m.Height, false, options, 0, "")
+	p.f.ClipEnd()
+}
+
+// unique returns the picture with columns added on its right until no picture before has
+// its width, and by what factor that made it wider. The library writes pictures in the
+// order of their widths, and those of one width in the random order of a map; the added
+// columns are clipped away.
+func (p *pdfPainter) unique(img image.Image) (image.Image, float64) {
+	if p.widths == nil {
+		p.widths = map[int]bool{}
+	}
+	from := img.Bounds()
+	width := from.Dx()
+	for p.widths[width] {
+		width++
+	}
+	p.widths[width] = true
+	if width == from.Dx() {
+		return img, 1
+	}
+	box := image.Rect(0, 0, width, from.Dy())
+	var wider draw.Image = image.NewNRGBA(box)
+	if of, ok := img.(*image.Paletted); ok {
+		wider = image.NewPaletted(box, of.Palette)
+	}
+	draw.Draw(wider, image.Rect(0, 0, from.Dx(), from.Dy()), img, from.Min, draw.Src)
+	return wider, float64(width) / float64(from.Dx())
+}
+
+// plane0 replaces what the library cannot write in a document's own texts: characters
+// beyond the basic multilingual plane.
+func plane0(text string) string {
+	return strings.Map(func(r rune) rune {
+		if r > 0xffff {
+			return '\ufffd'
+		}
+		return r
+	}, text)
 }

@@ -7,7 +7,6 @@ import (
 	"math"
 
 	xdraw "golang.org/x/image/draw"
-	"golang.org/x/image/font"
 	"golang.org/x/image/font/sfnt"
 	"golang.org/x/image/math/fixed"
 	"golang.org/x/image/vector"
@@ -185,9 +184,7 @@ func (r *rasterPainter) text(m *Text) {
 		if err == nil {
 			r.outline(segments, at, size/float64(f.em))
 		}
-		if a, err := f.font.GlyphAdvance(&r.buffer, g, f.em, font.HintingNone); err == nil {
-			at.X += float64(a) * size / float64(f.em)
-		}
+		at.X += f.advances[letter] * size
 	}
 	r.flush(m.Ink)
 }

@@ -23,7 +23,7 @@ func (l *press) film() {
 			"if the rough has nothing to spare and all the rest is cut smaller to match.", TooDeep))
 	}
 	l.y += 2
-	across := max(2, int(l.width()/(44*l.k)))
+	across := max(2, int(l.width()/(40*l.k)))
 	gap := 4.0
 	cell := (l.width() - gap*float64(across-1)) / float64(across)
 	t := l.body()

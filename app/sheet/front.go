@@ -5,6 +5,7 @@ import (
 	"image"
 	"image/color"
 	"math"
+	"slices"
 	"strings"
 
 	"github.com/go-gl/mathgl/mgl64"
@@ -39,9 +40,17 @@ func (l *press) front() {
 	l.y += 2
 	l.facts()
 	l.threeViews()
-	l.maps()
-	for _, part := range []func(){l.tolerance, l.care} {
-		l.whole(part)
+	l.whole(l.maps)
+	crowded := len(l.later) > 0
+	l.whole(l.tolerance)
+	l.whole(l.care)
+	if crowded { // the maps open a further page, and what is left follows them
+		parts := l.later
+		l.later = nil
+		l.start("", "")
+		for _, part := range parts {
+			l.whole(part)
+		}
 	}
 }
 
@@ -69,7 +78,9 @@ func (l *press) factList() []fact {
 	} else {
 		list = append(list, fact{"Weight", fmt.Sprintf("%.1f mm³; the material's density is not known", m.VolumeMM3)})
 	}
-	list = append(list, fact{"Rough", s.roughWords()})
+	if !s.LightModel {
+		list = append(list, fact{"Rough", s.roughWords()})
+	}
 	girdle := fmt.Sprintf("%.1f", m.GirdlePercent.Min)
 	if most := fmt.Sprintf("%.1f", m.GirdlePercent.Max); most != girdle {
 		girdle += " to " + most
@@ -152,6 +163,9 @@ func (s *Sheet) machineWords() string {
 	return words + fmt.Sprintf("; crown numbers %s, transfer at %s", run, s.transferSetting())
 }
 
+// mostFactLines is how long a fact may be on the front page.
+const mostFactLines = 9
+
 func (l *press) facts() {
 	name := 0.0
 	list := l.factList()
@@ -161,14 +175,10 @@ func (l *press) facts() {
 	x := l.left() + name + 3
 	for _, f := range list {
 		words := f.value
-		wrapped := l.body().Wrap(words, l.right()-x)
-		if most := 9; len(wrapped) > most { // long notes go on among what to mind
-			wrapped = append(wrapped[:most-1], l.body().Cut(strings.Join(wrapped[most-1:], " "), l.right()-x))
-			words = strings.Join(wrapped, "\n")
-		}
-		l.need(float64(len(wrapped)) * l.body().Leading())
+		words = l.short("the plan", words, l.right()-x, mostFactLines)
+		l.need(tall(l.body(), l.right()-x, words))
 		l.say(l.strong(), black(), l.left(), l.y+0.78*l.body().Leading(), f.name)
-		l.y += l.lines(l.body(), black(), x, l.y, l.right()-x+1, words) + 0.7
+		l.y += l.lines(l.body(), black(), x, l.y, l.right()-x, words) + 0.7
 	}
 	l.y += 1
 }
@@ -176,36 +186,39 @@ func (l *press) facts() {
 // threeViews draws the finished stone from above, from below and from the side at one
 // scale, with its sizes.
 func (l *press) threeViews() {
-	s := l.sheet
-	stone := s.Solution.Stone
+	stone := l.sheet.Solution.Stone
 	_, extent := middleOf(stone)
-	side := extent[1] // across, seen from index 0
-	gap := 15 * l.k
-	height := min(0.2*s.Paper.Height, 52)
-	scale := roundScale(min(height/extent[0], height/(extent[2]), (l.width()-3*gap)/(2*extent[1]+side)))
-	tall := scale * max(extent[0], extent[2])
 	t := l.body()
-	l.need(tall + 3*t.Leading())
+	const gap = 6
+	heights := t.Width("pavilion 00.00") + 7
+	side := fmt.Sprintf("from the side, %.2f mm", extent[1])
+	height := min(0.2*l.sheet.Paper.Height, 52)
+	scale := roundScale(min(height/extent[0], height/extent[2], (l.width()-heights-2*gap)/(3*extent[1])))
+	cell := func(words string) float64 { return max(scale*extent[1], t.Width(words)) }
+	tall := scale * max(extent[0], extent[2])
+	l.need(tall + 4*t.Leading())
 	middle := l.y + tall/2 + 1
-	x := l.left() + scale*extent[1]/2 + 1
+	x := l.left()
 	for _, look := range []struct {
 		words string
 		axes  func() (mgl64.Vec3, mgl64.Vec3)
-	}{{"from above", fromAbove}, {"from below", fromBelow}} {
+	}{
+		{"from above", fromAbove}, {"from below", fromBelow},
+		{side, func() (mgl64.Vec3, mgl64.Vec3) { return fromSide(0) }},
+	} {
 		right, up := look.axes()
-		v := fit(stone, right, up, drawing.Point{X: x, Y: middle}, 1e9, 1e9, scale)
+		at := drawing.Point{X: x + cell(look.words)/2, Y: middle}
+		v := fit(stone, right, up, at, 1e9, 1e9, scale)
 		v.solid(l.page, stone, nil, 0.8)
-		l.page.Write(t, pale(), drawing.Middle, drawing.Point{X: x, Y: l.y + tall + 2 + t.Leading()}, look.words)
-		x += scale*extent[1] + gap
+		l.page.Write(t, pale(), drawing.Middle, drawing.Point{X: at.X, Y: l.y + tall + 2 + t.Leading()}, look.words)
+		x += cell(look.words) + gap
+		if look.words == side {
+			l.heights(&v, at.X+scale*extent[1]/2+1.5)
+		}
 	}
-	right, up := fromSide(0)
-	v := fit(stone, right, up, drawing.Point{X: x - 3, Y: middle}, 1e9, 1e9, scale)
-	v.solid(l.page, stone, nil, 0.8)
-	l.page.Write(t, pale(), drawing.Middle, drawing.Point{X: x - 3, Y: l.y + tall + 2 + t.Leading()},
-		fmt.Sprintf("from the side, %.2f mm", extent[1]))
-	l.heights(&v, x-3+scale*extent[1]/2+1.5)
-	l.page.Write(t, pale(), drawing.Right, drawing.Point{X: l.right(), Y: l.y + tall + 2 + t.Leading()}, fmt.Sprintf("drawn %s : 1", trimmed(scale, 2)))
-	l.y += tall + 2*t.Leading() + 2.5
+	l.y += tall + 2*t.Leading() + 1
+	l.page.Write(t, pale(), drawing.Right, drawing.Point{X: l.right(), Y: l.y + 0.78*t.Leading()}, fmt.Sprintf("drawn %s : 1", trimmed(scale, 2)))
+	l.y += t.Leading()
 }
 
 // heights writes the heights of crown, girdle and pavilion beside the view from the
@@ -223,6 +236,7 @@ func (l *press) heights(v *View, x float64) {
 		{fmt.Sprintf("girdle %.2f", g.Max-g.Min), g.Min, g.Max},
 		{fmt.Sprintf("pavilion %.2f", m.PavilionDepthMM), g.Min - m.PavilionDepthMM, g.Min},
 	}
+	bands = slices.DeleteFunc(bands, func(b band) bool { return b.to-b.from < 0.005 }) // nothing to see
 	t := l.body()
 	s1 := drawing.Style{Stroke: drawing.Grey(0x40), Width: thin}
 	y := make([]float64, len(bands))
@@ -259,7 +273,7 @@ func (l *press) maps() {
 	height := max(t.Leading()+2*edge+3, table) + 1
 	if !beside {
 		edge = min((l.width()-26*l.k)/columns-2, 22)
-		height = t.Leading() + 2*edge + 5 + table
+		height = 2*t.Leading() + 2*edge + 5 + table
 	}
 	l.subhead("Where the light goes, seen face-up", height)
 	top := l.y

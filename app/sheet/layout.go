@@ -2,6 +2,7 @@ package sheet
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 
 	"pavilight/app/drawing"
@@ -40,6 +41,7 @@ type press struct {
 	part  string  // heading to repeat on a page that goes on
 	k     float64 // size of type over the usual one
 
+	notes []fact   // texts that were cut short where they belong, in full
 	later []func() // parts that found no room on the front page
 
 	lacking bool // a letter was met that the typeface lacks
@@ -167,6 +169,21 @@ func tall(t drawing.Type, width float64, words string) float64 {
 	return float64(len(t.Wrap(words, width))) * t.Leading()
 }
 
+// short returns a text cut to a number of lines of a column; the whole of one that is
+// longer is kept for the notes under the given name.
+func (l *press) short(name, words string, width float64, most int) string {
+	t := l.body()
+	wrapped := t.Wrap(words, width)
+	if len(wrapped) <= most {
+		return words
+	}
+	if !slices.ContainsFunc(l.notes, func(n fact) bool { return n.name == name }) {
+		l.notes = append(l.notes, fact{name, words})
+	}
+	last := t.Cut(wrapped[most-1]+" "+wrapped[most], width-t.Width("…")-0.01)
+	return strings.Join(append(wrapped[:most-1:most-1], strings.TrimSuffix(last, "…")+"…"), "\n")
+}
+
 // subhead sets a heading within a page, kept together with the given height below it.
 func (l *press) subhead(words string, with float64) {
 	l.need(l.head().Leading() + 2 + with)
@@ -258,7 +275,9 @@ func (l *press) ruler(x, y float64) {
 		l.page.Line(s, drawing.Point{X: x + float64(mm), Y: y}, drawing.Point{X: x + float64(mm), Y: y - tick})
 	}
 	t := l.body()
-	l.page.Write(t, black(), drawing.Left, drawing.Point{X: x + long + 2, Y: y}, "50 mm: measure it; printed at 100 %, sizes on paper are true")
+	words := "50 mm: measure it; printed at 100 %, sizes on paper are true"
+	width := l.right() - x - long - 2
+	l.lines(t, black(), x+long+2, y-tall(t, width, words)+0.22*t.Leading(), width, words)
 }
 
 // foot writes the foot of every page.

@@ -75,6 +75,10 @@ func (l *press) mind() {
 	for _, part := range l.later {
 		part()
 	}
+	for _, n := range l.notes {
+		l.subhead("Notes on "+n.name, 2*l.body().Leading())
+		l.paragraph(l.body(), black(), n.value)
+	}
 	if !s.LightModel {
 		if len(s.Plan.Polish) > 0 {
 			l.subhead("Polish", l.body().Leading())
@@ -106,7 +110,7 @@ func (l *press) mind() {
 	}
 	if l.lacking {
 		l.paragraph(l.body(), black(), fmt.Sprintf("%c stands for a letter that this sheet's typeface does not hold: it has Latin, Greek and Cyrillic. "+
-			"The PDF's title and the attached plan keep the full text.", drawing.Missing))
+			"The attached plan keeps the full text.", drawing.Missing))
 	}
 	l.y += 3
 	l.need(14)
@@ -117,9 +121,9 @@ func (l *press) mind() {
 	l.blank(l.left()+l.width()/2+7*l.k, l.y, l.width()/2-7*l.k)
 	l.y += 4
 	l.paragraph(l.body(), pale(), strings.TrimSpace(s.Program))
-	l.need(9)
-	l.ruler(l.left(), l.y+7)
-	l.y += 9
+	l.need(12)
+	l.ruler(l.left(), l.y+10)
+	l.y += 12
 }
 
 // benchCautions are the dangers of the bench whatever the stone. Sources: the usual

@@ -92,7 +92,7 @@ func (l *press) overview(facing facets.Side) {
 	}
 	y += l.lines(l.body(), pale(), x, y, width, fmt.Sprintf("%s, drawn %s : 1. %s", from, trimmed(scale, 2), l.ringWords(facing, left)))
 	y += 2
-	y += l.lines(l.strong(), black(), x, y, width, "Sizes to take")
+	y += l.lines(l.strong(), black(), x, y, width, "Sizes")
 	y += 0.5
 	for _, z := range s.Sizes(facing) {
 		value := z.String()
@@ -126,6 +126,9 @@ func (l *press) nearIndex(facing facets.Side) int {
 // ringWords tells what the ring shows.
 func (l *press) ringWords(facing facets.Side, left []string) string {
 	m := &l.sheet.Machine
+	if l.sheet.LightModel {
+		return fmt.Sprintf("The ring is the plan's gear of %d.", m.Gear)
+	}
 	words := fmt.Sprintf("The ring is the gear of %d as the machine shows it on this side", m.Gear)
 	if l.sheet.LeaveOut.Indices {
 		words = fmt.Sprintf("The ring has %d teeth, index %d up", m.Gear, m.Gear)
@@ -209,7 +212,11 @@ func (l *press) tableHead(c columns) {
 	l.say(t, black(), c.tier, y, "Tier")
 	l.say(t, black(), c.angle, y, "Angle")
 	l.say(t, black(), c.index, y, "Index")
-	l.say(t, black(), c.stop, y, "Cut")
+	last := "Cut"
+	if l.sheet.LightModel {
+		last = "Facets"
+	}
+	l.say(t, black(), c.stop, y, last)
 	l.y += t.Leading() + 0.6
 	l.rule(l.y)
 }
@@ -249,10 +256,15 @@ func (l *press) indexWords(r *Row) []string {
 	}
 }
 
+// mostNoteLines is how long a tier's note may be in the table of steps.
+const mostNoteLines = 6
+
 // cutWords returns when to stop and what the step does.
-func (l *press) cutWords(r *Row) (main, small string) {
+func (l *press) cutWords(c columns, r *Row) (main, small string) {
 	s := l.sheet
 	switch {
+	case s.LightModel:
+		return s.areaWords(r.Tier.Name), ""
 	case s.LeaveOut.Stops:
 	case s.LeaveOut.Indices:
 		main = r.StopShort
@@ -267,9 +279,23 @@ func (l *press) cutWords(r *Row) (main, small string) {
 		parts = append(parts, r.Tier.Stage)
 	}
 	if !s.LeaveOut.Any() && r.Tier.Note != "" {
-		parts = append(parts, r.Tier.Note)
+		parts = append(parts, l.short("tier "+r.Tier.Name, r.Tier.Note, c.end-c.stop, mostNoteLines))
 	}
 	return main, strings.Join(parts, "; ")
+}
+
+// areaWords returns how many facets of the finished stone a tier has and how large they are.
+func (s *Sheet) areaWords(tier string) string {
+	n, area := 0, 0.0
+	for i := range s.Solution.Stone.Facets {
+		if f := &s.Solution.Stone.Facets[i]; f.Tier == tier {
+			n, area = n+1, area+f.Area
+		}
+	}
+	if n == 1 {
+		return fmt.Sprintf("1, %.2f mm²", area)
+	}
+	return fmt.Sprintf("%d, %.2f mm² in all", n, area)
 }
 
 func (l *press) rowHeight(c columns, r *Row) float64 {
@@ -279,7 +305,7 @@ func (l *press) rowHeight(c columns, r *Row) float64 {
 		angle += tall(l.body(), c.index-c.angle-2, small)
 	}
 	index := l.grid(l.index(), 0, 0, c.stop-c.index-columnGap, l.indexWords(r), false)
-	main, note := l.cutWords(r)
+	main, note := l.cutWords(c, r)
 	cut := tall(l.body(), c.end-c.stop, main)
 	if note != "" {
 		cut += tall(l.body(), c.end-c.stop, note)
@@ -309,7 +335,7 @@ func (l *press) row(c columns, r *Row, height float64) {
 		l.blank(c.index, first, c.stop-c.index-columnGap)
 	}
 	l.grid(l.index(), c.index, on(l.index()), c.stop-c.index-columnGap, l.indexWords(r), true)
-	main, note := l.cutWords(r)
+	main, note := l.cutWords(c, r)
 	if l.sheet.LeaveOut.Stops {
 		l.blank(c.stop, first, c.end-c.stop)
 		main = ""

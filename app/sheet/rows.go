@@ -134,7 +134,7 @@ func (s *Sheet) stopWords(r *Row, indices bool) string {
 			return words
 		}
 		if r.Flat {
-			return s.heightWords(r, "until it stands", d*sign(t.Side))
+			return s.heightWords(r, stands, d*sign(t.Side))
 		}
 		return s.heightWords(r, "until its facets reach the axis", d/math.Cos(r.Solved.Angle.Radians())*sign(t.Side))
 	case facets.StopCentre:
@@ -171,22 +171,29 @@ func sign(side facets.Side) float64 {
 	return 1
 }
 
+// stands begins what is said of a level flat that a distance stops.
+const stands = "until it stands"
+
 // heightWords tells a height over the plan's z = 0 as a distance that a gauge can
 // take: from the nearer line of the finished girdle, or, at the girdle itself, by the
 // rough that is left.
 func (s *Sheet) heightWords(r *Row, what string, z float64) string {
 	const same = 0.005 // mm, what two decimals can tell
 	g := s.Measures.GirdleHeightMM
+	comma := ", "
+	if what == stands {
+		comma = " "
+	}
 	switch {
 	case z < g.Min-same:
-		return fmt.Sprintf("%s, %.2f mm below the finished girdle's lower line", what, g.Min-z)
+		return fmt.Sprintf("%s%s%.2f mm below the finished girdle's lower line", what, comma, g.Min-z)
 	case z > g.Max+same:
-		return fmt.Sprintf("%s, %.2f mm above the finished girdle's upper line", what, z-g.Max)
+		return fmt.Sprintf("%s%s%.2f mm above the finished girdle's upper line", what, comma, z-g.Max)
 	case r.Facing == facets.Pavilion:
 		top := g.Max + s.Measures.CrownHeightMM
 		return fmt.Sprintf("%s at the girdle line, with %.2f mm or more of rough left to the dop side", what, top-z+s.Rough.AllowanceMM)
 	case z > g.Min+same:
-		return fmt.Sprintf("%s, %.2f mm above the girdle's lower line", what, z-g.Min)
+		return fmt.Sprintf("%s%s%.2f mm above the girdle's lower line", what, comma, z-g.Min)
 	default:
 		return what + " at the girdle line"
 	}

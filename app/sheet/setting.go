@@ -38,16 +38,22 @@ func (s Setting) Words() string {
 		sign = "−"
 	}
 	part := strconv.FormatFloat(math.Round(math.Abs(s.Part)*1e4)/1e4, 'f', -1, 64)
-	return fmt.Sprintf("%d %s %s tooth = %.2f degrees", s.Tooth, sign, part, math.Abs(s.Cheater.Degrees()))
+	return fmt.Sprintf("%d %s %s tooth = %s degrees", s.Tooth, sign, part, rounded(math.Abs(s.Cheater.Degrees()), 2))
 }
 
 // signed writes a number with its sign, a true minus for negative ones.
 func signed(v float64, decimals int) string {
-	text := strconv.FormatFloat(math.Abs(v), 'f', decimals, 64)
+	text := rounded(math.Abs(v), decimals)
 	if v < 0 {
 		return "−" + text
 	}
 	return "+" + text
+}
+
+// rounded writes a number that is not negative, halves rounded up also where their
+// binary form lies a little below.
+func rounded(v float64, decimals int) string {
+	return strconv.FormatFloat(v+1e-9, 'f', decimals, 64)
 }
 
 // ToGear returns where an index of one gear falls on another, in [0, to).

@@ -70,6 +70,9 @@ func New(job Job) (*Sheet, error) {
 	}
 	s := &Sheet{Job: job, Solution: solved, Measures: solved.Stone.Measure()}
 	s.LightModel = job.Material.Key == "diamond"
+	if s.LightModel { // the plan's own numbers, for there is nothing to set
+		s.Machine = Machine{Name: "the plan's own numbers", Cheater: 180 * facets.Degree}
+	}
 	if s.Machine.Gear == 0 {
 		s.Machine.Gear = job.Plan.Gear
 	}

@@ -47,8 +47,11 @@ func (s *Sheet) Sizes(side facets.Side) []Size {
 	}
 	girdle := Size{What: "girdle thickness, thin to thick", MM: m.GirdleMM.Min, Most: m.GirdleMM.Max}
 	if side == facets.Pavilion {
+		all = append(all, Size{What: "culet to the girdle's lower line", MM: m.PavilionDepthMM})
+		if s.LightModel {
+			return all
+		}
 		all = append(all,
-			Size{What: "culet to the girdle's lower line", MM: m.PavilionDepthMM},
 			Size{What: "rough left above the girdle's lower line, at least", MM: m.DepthMM - m.PavilionDepthMM + s.Rough.AllowanceMM},
 			Size{What: "culet to the dop side, at least", MM: m.DepthMM + s.Rough.AllowanceMM},
 		)
@@ -71,13 +74,19 @@ func (s *Sheet) girdleCutOn(side facets.Side) bool {
 	})
 }
 
-// across returns the distance between opposite facets of each girdle tier of the
-// side. Facets that have none opposite are left out.
+// across returns what a caliper takes on each girdle tier of the side: the distance
+// between opposite facets, or to the far side where a facet has none opposite.
 func (s *Sheet) across(side facets.Side) []Size {
 	var all []Size
 	for i := range s.Rows {
 		r := &s.Rows[i]
-		if r.Facing != side || r.Tier.Side != facets.Girdle || !s.opposite(r) {
+		if r.Facing != side || r.Tier.Side != facets.Girdle {
+			continue
+		}
+		if !s.opposite(r) {
+			if !r.Tier.Temporary {
+				all = append(all, s.farSide(r))
+			}
 			continue
 		}
 		what := r.Tier.Name + ", across opposite facets"
@@ -87,6 +96,20 @@ func (s *Sheet) across(side facets.Side) []Size {
 		all = append(all, Size{What: what, MM: 2 * r.Solved.Distance * s.Solution.Scale})
 	}
 	return all
+}
+
+// farSide returns how far the finished stone reaches from a girdle facet to the other
+// side: what a caliper takes where no facet lies opposite.
+func (s *Sheet) farSide(r *Row) Size {
+	z := Size{What: r.Tier.Name + ", from a facet to the far side", MM: math.Inf(1)}
+	for _, plane := range s.Solution.Planes(s.Plan, r.Number-1) {
+		far := 0.0
+		for _, c := range s.Solution.Stone.Corners {
+			far = max(far, plane.Distance-plane.Normal.Dot(c))
+		}
+		z.MM, z.Most = min(z.MM, far), max(z.Most, far)
+	}
+	return z
 }
 
 // Checks returns what to tick before the stone leaves a side, in words.
@@ -104,7 +127,11 @@ func (s *Sheet) Checks(side facets.Side) []string {
 	if len(names) == 0 {
 		return nil
 	}
-	add("All %d facets of %s are cut; corners meet within %.2f mm under the loupe", count, listed(names), facets.VisibleGap)
+	all := fmt.Sprintf("All %d facets of %s are cut", count, listed(names))
+	if count == 1 {
+		all = names[0] + " is cut"
+	}
+	add("%s; corners meet within %.2f mm under the loupe", all, facets.VisibleGap)
 	add("No scratch, pit or chip left; polish even in every facet")
 	if s.girdleCutOn(side) {
 		add("Girdle measured at three places or more; all within 0.02 mm of the size above")
@@ -114,11 +141,11 @@ func (s *Sheet) Checks(side facets.Side) []string {
 			s.Measures.DepthMM-s.Measures.PavilionDepthMM+s.Rough.AllowanceMM)
 	} else {
 		add("Table, girdle thickness and total height measured")
+	}
+	if !s.turnAfter(side) {
 		if c, ok := s.Carats(s.Measures.VolumeMM3); ok {
 			add("Cleaned and weighed: the plan gives %.2f ct", c)
 		}
-	}
-	if !s.turnAfter(side) {
 		return list
 	}
 	add("Stone and both dops clean, dry and in line; gear locked at %s for the transfer", s.transferSetting())
