@@ -205,7 +205,8 @@ func (b *Bench) Select(tier string) {
 // it is shown.
 func (b *Bench) Troubles() []string { return InWords(b.Look.Trouble) }
 
-// InWords returns what an error says, one fault a line, nil for none.
+// InWords returns what an error says, one fault a line, nil for none. Files are
+// named without their folders, which the window has no room for.
 func InWords(err error) []string {
 	if err == nil {
 		return nil
@@ -214,7 +215,9 @@ func InWords(err error) []string {
 	if errors.As(err, &faults) {
 		lines := make([]string, len(faults))
 		for i, f := range faults {
-			lines[i] = f.Error()
+			short := *f
+			short.File = filepath.Base(f.File)
+			lines[i] = short.Error()
 		}
 		return lines
 	}

@@ -137,6 +137,8 @@ func (g *greys) Size(name fyne.ThemeSizeName) float32 {
 		return 17 * g.scale
 	case theme.SizeNameScrollBar:
 		return 10
+	case theme.SizeNameModalBlurRadius:
+		return 0 // what is under a dialog goes on living, and is seen to
 	}
 	return g.Theme.Size(name)
 }
