@@ -9,15 +9,6 @@ import (
 	"pavilight/facets"
 )
 
-// near fails the test where got lies further from want than tolerance, naming the
-// source of want.
-func near(t *testing.T, what string, got, want, tolerance float64, source string) {
-	t.Helper()
-	if !(math.Abs(got-want) <= tolerance) {
-		t.Errorf("%s: got %.9g, want %.9g within %g (%s)", what, got, want, tolerance, source)
-	}
-}
-
 const bornWolf = "Born & Wolf, Principles of Optics, section 1.5"
 
 func TestFresnel(t *testing.T) {

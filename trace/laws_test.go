@@ -211,7 +211,7 @@ func TestRodGuides(t *testing.T) {
 
 // TestPathKeepsTheSum adds up what each bounce sheds; leaving one out must show.
 func TestPathKeepsTheSum(t *testing.T) {
-	for name, s := range stones(t) {
+	for name, s := range each(stones(t)) {
 		tr := prepare(t, s, View{Tilt: 5 * facets.Degree, Turn: 30 * facets.Degree}, false)
 		p := mustFollow(t, tr, 1.6, 1, 0.031, 0.047)
 		sum := p.Surface + p.Remaining
@@ -232,7 +232,7 @@ func TestPathKeepsTheSum(t *testing.T) {
 func TestReversibility(t *testing.T) {
 	rng := rand.New(rand.NewPCG(11, 4))
 	tried := 0
-	for name, s := range stones(t) {
+	for name, s := range each(stones(t)) {
 		for _, averaged := range []bool{false, true} {
 			for range 10 {
 				tr := prepare(t, s, View{Tilt: facets.Angle(rng.Float64()) / 2, Turn: facets.Angle(rng.Float64() * 6)}, averaged)

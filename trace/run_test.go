@@ -151,7 +151,7 @@ func TestEndGameIsUnbiased(t *testing.T) {
 
 // TestUniformSurround shows exactly the surround, whatever the stone.
 func TestUniformSurround(t *testing.T) {
-	for name, s := range stones(t) {
+	for name, s := range each(stones(t)) {
 		scene := Scene{Stone: s, Material: plain(t, "stone", 1.9), Surroundings: Around(plain(t, "air", 1), plain(t, "dense", 2.2))}
 		for _, c := range mustRun(t, scene, Settings{Wavelength: 550, Pixels: 8, Samples: 4, Below: 1, View: View{Tilt: 20 * facets.Degree}, exact: true}).Columns {
 			near(t, name+" in "+c.Medium.Name, c.Lit.Sum+c.Ledger.Unresolved, 1, 1e-12, "a lossless stone in a uniform surround shows the surround")

@@ -2,11 +2,9 @@ package trace
 
 import (
 	"context"
-	"maps"
 	"math"
 	"math/cmplx"
 	"math/rand/v2"
-	"slices"
 	"strings"
 	"testing"
 
@@ -122,9 +120,7 @@ func TestSmallBirefringence(t *testing.T) {
 	rng := rand.New(rand.NewPCG(9, 1))
 	apart, rays := 0.0, 0.0
 	differ := map[float64]float64{}
-	all := stones(t)
-	for _, name := range slices.Sorted(maps.Keys(all)) {
-		s := all[name]
+	for _, s := range each(stones(t)) {
 		view := View{Tilt: facets.Angle(rng.Float64()) / 2, Turn: facets.Angle(rng.Float64() * 6)}
 		tr := prepare(t, s, view, false)
 		tr.faint = 0
@@ -171,9 +167,7 @@ func TestChosenBranches(t *testing.T) {
 	const throws = 1500
 	// One ray a stone, five entries, two-sided: a level of 0.001 altogether.
 	const limit = 4.3
-	all := stones(t)
-	for _, name := range slices.Sorted(maps.Keys(all)) {
-		s := all[name]
+	for name, s := range each(stones(t)) {
 		tr := general(t, s, View{Tilt: 0.2, Turn: facets.Angle(rng.Float64() * 6)}, air, false)
 		tr.faint, tr.headCos = 1e-4, math.Cos(10*math.Pi/180)
 		axis := unit(rng)
@@ -222,7 +216,7 @@ func TestDoubleScenes(t *testing.T) {
 	rng := rand.New(rand.NewPCG(9, 4))
 	stone := uniaxial(t, "stone", 1.925, 1.984)
 	air, water := plain(t, "air", 1), plain(t, "water", 1.333)
-	for name, s := range stones(t) {
+	for name, s := range each(stones(t)) {
 		tier := ""
 		for _, f := range s.Facets {
 			tier = f.Tier

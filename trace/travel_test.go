@@ -31,7 +31,7 @@ func at550(tr *traveller, stone *gems.Material) *lambda {
 func TestTravellerAgrees(t *testing.T) {
 	rng := rand.New(rand.NewPCG(5, 6))
 	stone, water := plain(t, "stone", 1.62), plain(t, "water", 1.333)
-	for name, s := range stones(t) {
+	for name, s := range each(stones(t)) {
 		for _, averaged := range []bool{false, true} {
 			view := View{Tilt: facets.Angle(rng.Float64()) / 2, Turn: facets.Angle(rng.Float64() * 6)}
 			tr := general(t, s, view, water, averaged)
@@ -58,7 +58,7 @@ func TestTravellerAgrees(t *testing.T) {
 // TestDish checks the flat surface of a liquid above the stone.
 func TestDish(t *testing.T) {
 	rng := rand.New(rand.NewPCG(8, 1))
-	for name, s := range stones(t) {
+	for name, s := range each(stones(t)) {
 		for _, row := range []struct{ liquid, stone float64 }{{1, 1.62}, {1.477, 1.62}, {1.477, 1.477}, {1.74, 1.62}} {
 			liquid, stone := plain(t, "liquid", row.liquid), plain(t, "stone", row.stone)
 			tr := general(t, s, View{Tilt: 0.1, Turn: 2}, liquid, false)
@@ -112,7 +112,7 @@ func TestBodyColour(t *testing.T) {
 // TestGround puts something diffuse under the stone.
 func TestGround(t *testing.T) {
 	air, stone := plain(t, "air", 1), plain(t, "stone", 1.54)
-	for name, s := range stones(t) {
+	for name, s := range each(stones(t)) {
 		for i := range 6 {
 			tr := general(t, s, View{}, air, true)
 			tr.faint = 1e-3

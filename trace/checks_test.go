@@ -1,0 +1,313 @@
+package trace
+
+import (
+	"cmp"
+	"flag"
+	"fmt"
+	"maps"
+	"math"
+	"os"
+	"path/filepath"
+	"runtime"
+	"slices"
+	"strings"
+	"sync"
+	"testing"
+)
+
+var (
+	update = flag.Bool("update", false, "write CHECKS.md anew from the checks of this run")
+	long   = flag.Bool("long", false, "run the long forms of the statistical checks")
+)
+
+// checksPage is the page that lists every check against a value from outside this code.
+const checksPage = "CHECKS.md"
+
+// checks gathers the comparisons that near and agree make, for the page.
+var checks = recorder{rows: map[rowKey]*row{}}
+
+type recorder struct {
+	mutex sync.Mutex
+	rows  map[rowKey]*row
+}
+
+// rowKey names a row of the page: comparisons alike in all three share it.
+type rowKey struct{ test, what, source string }
+
+// row is what the comparisons of one key came to.
+type row struct {
+	file      string // in which the test stands
+	times     int
+	least     float64 // of the expected values
+	most      float64
+	worst     float64 // error over what is allowed
+	got, want float64 // where it is worst
+	allowed   string
+	measured  bool // the expected value is measured too
+}
+
+// note takes a comparison into the page. allowed is how far got may lie from want.
+func (r *recorder) note(t *testing.T, what string, got, want, allowed float64, words, source string, measured bool) {
+	if i := strings.LastIndex(what, ": "); i >= 0 {
+		what = what[i+2:] // what stands before names the stone or the row
+	}
+	test, _, _ := strings.Cut(t.Name(), "/")
+	key := rowKey{test, what, source}
+	r.mutex.Lock()
+	defer r.mutex.Unlock()
+	w := r.rows[key]
+	if w == nil {
+		w = &row{file: caller(), least: math.Inf(1), most: math.Inf(-1), worst: -1, allowed: words, measured: measured}
+		r.rows[key] = w
+	}
+	w.times++
+	w.least, w.most = min(w.least, want), max(w.most, want)
+	if bad := math.Abs(got-want) / max(allowed, math.SmallestNonzeroFloat64); bad > w.worst {
+		w.worst, w.got, w.want = bad, got, want
+	}
+	if w.allowed != words {
+		w.allowed = "see the test"
+	}
+}
+
+// caller returns the test file from which a comparison was made.
+func caller() string {
+	for depth := 2; ; depth++ {
+		_, file, _, ok := runtime.Caller(depth)
+		if name := filepath.Base(file); !ok || strings.HasSuffix(name, "_test.go") && name != "checks_test.go" {
+			return name
+		}
+	}
+}
+
+// near fails the test where got lies further from want than tolerance, naming the
+// source of want, and enters the comparison in the page.
+func near(t *testing.T, what string, got, want, tolerance float64, source string) {
+	t.Helper()
+	checks.note(t, what, got, want, tolerance, fmt.Sprintf("%.1e", tolerance), source, false)
+	if !(math.Abs(got-want) <= tolerance) {
+		t.Errorf("%s: got %.9g, want %.9g within %g (%s)", what, got, want, tolerance, source)
+	}
+}
+
+// agree fails the test where two numbers lie more than some standard errors apart; the
+// error of want is 0 where it is exact.
+func agree(t *testing.T, what string, got, gotError, want, wantError, errors float64, source string) {
+	t.Helper()
+	joint := math.Hypot(gotError, wantError)
+	checks.note(t, what, got, want, errors*joint, fmt.Sprintf("%g standard errors", errors), source, wantError > 0)
+	if !(math.Abs(got-want) <= errors*joint) {
+		t.Errorf("%s: got %.6g ± %.1g, want %.6g ± %.1g, %.1f standard errors apart (%s)",
+			what, got, gotError, want, wantError, math.Abs(got-want)/joint, source)
+	}
+}
+
+// themes are the page's headings in their order, by the file that holds the checks.
+var themes = []struct{ file, title string }{
+	{"fresnel_test.go", "A facet: reflection, refraction, critical angle, phase"},
+	{"crossing_test.go", "Films on a facet"},
+	{"laws_test.go", "Light in a stone: plates, prisms, boxes, rods"},
+	{"rhomb_test.go", "Polarisation from facet to facet"},
+	{"slow_test.go", "The tracer against one written as on paper"},
+	{"travel_test.go", "Dishes, body colour, paper"},
+	{"run_test.go", "Whole runs"},
+	{"crystal_test.go", "Double refraction at a facet"},
+	{"travel_crystal_test.go", "Double refraction in a stone"},
+	{"reciprocity_test.go", "Light traced forward"},
+	{"peer_test.go", "A general path tracer"},
+	{"harding_test.go", "Published theory and studies of cut stones"},
+	{"observer_test.go", "The observer"},
+	{"illuminant_test.go", "Illuminants"},
+	{"light_test.go", "Lights"},
+	{"hdr_test.go", "Panoramas"},
+	{"eye_test.go", "What an eye sees"},
+	{"appearance_test.go", "Measures of appearance"},
+}
+
+// unlisted are the files whose comparisons are of one form of the code with another.
+var unlisted = []string{"kernel_test.go", "symmetry_test.go"}
+
+// TestMain writes the page, or fails where it is stale, after a run of all tests.
+func TestMain(m *testing.M) {
+	code := m.Run()
+	whole := true
+	for _, name := range []string{"run", "skip", "list", "bench", "fuzz"} {
+		whole = whole && flag.Lookup("test."+name).Value.String() == ""
+	}
+	if code == 0 && whole && flag.Lookup("test.count").Value.String() == "1" {
+		if err := checks.settle(); err != nil {
+			fmt.Fprintln(os.Stderr, err)
+			code = 1
+		}
+	}
+	os.Exit(code)
+}
+
+// settle compares the page with the checks that were made, or writes it.
+func (r *recorder) settle() error {
+	old, err := os.ReadFile(checksPage)
+	if err != nil && !*update {
+		return fmt.Errorf("%s: %v; run go test ./trace -update", checksPage, err)
+	}
+	rows := r.lines()
+	if *update {
+		if !*long {
+			rows = append(rows, longRows(string(old))...)
+		}
+		return os.WriteFile(checksPage, []byte(r.page(rows, section(string(old), mutationsHeading))), 0o644)
+	}
+	if *long {
+		return nil
+	}
+	have := map[string]bool{}
+	for _, line := range strings.Split(string(old), "\n") {
+		have[identity(line)] = true
+	}
+	for _, line := range rows {
+		if id := identity(line.text); !have[id] {
+			return fmt.Errorf("%s is stale: it lacks the check %q; run go test ./trace -update", checksPage, id)
+		}
+		delete(have, identity(line.text))
+	}
+	for id := range have {
+		if strings.Count(id, "|") == identityBars && strings.HasPrefix(id, "| `") && !strings.Contains(id, longForm) {
+			return fmt.Errorf("%s is stale: the check %q is not made any more; run go test ./trace -update", checksPage, id)
+		}
+	}
+	return nil
+}
+
+// longRows returns the rows of long forms that the page has.
+func longRows(page string) (rows []line) {
+	file := ""
+	for _, text := range strings.Split(page, "\n") {
+		if name := strings.Trim(text, "`"); strings.HasSuffix(name, "_test.go") {
+			file = name
+		}
+		if strings.HasPrefix(text, "| `") && strings.Contains(text, longForm) {
+			rows = append(rows, line{file, text})
+		}
+	}
+	return rows
+}
+
+// line is a row as the page shows it.
+type line struct{ file, text string }
+
+// lines returns the rows in the page's order.
+func (r *recorder) lines() (all []line) {
+	keys := slices.SortedFunc(maps.Keys(r.rows), func(a, b rowKey) int {
+		return cmp.Or(cmp.Compare(a.test, b.test), cmp.Compare(a.what, b.what), cmp.Compare(a.source, b.source))
+	})
+	for _, k := range keys {
+		w := r.rows[k]
+		if slices.Contains(unlisted, w.file) {
+			continue
+		}
+		expected := fmt.Sprintf("%.6g", w.want)
+		switch {
+		case w.measured:
+			expected = fmt.Sprintf("%s%.5f", measuredMark, w.want)
+		case w.least != w.most:
+			expected = fmt.Sprintf("%.3g to %.3g", w.least, w.most)
+		}
+		got := fmt.Sprintf("%.6g", w.got)
+		if w.times > 1 && w.least != w.most {
+			got = fmt.Sprintf("%.6g for %.6g", w.got, w.want)
+		}
+		all = append(all, line{w.file, fmt.Sprintf("| `%s` %s | %s | %s | %s | %.1e | %s | %d |",
+			strings.TrimPrefix(k.test, "Test"), cell2(k.what), cell2(k.source), expected, got, math.Abs(w.got-w.want), w.allowed, w.times)})
+	}
+	return all
+}
+
+// cell2 keeps a text within one cell of a table.
+func cell2(s string) string { return strings.ReplaceAll(s, "|", "/") }
+
+const (
+	measuredMark     = "≈ "
+	mutationsHeading = "## Mutations"
+	longForm         = "(long form)" // ends the words of a check that only -long makes
+	identityBars     = 6
+)
+
+// identity is what must not change in a row of the page: all but what was got and its
+// error, which differ in the last digits from processor to processor, and an expected
+// value that is itself measured. Where wants differ their range is part of it.
+func identity(text string) string {
+	cells := strings.Split(text, "|")
+	if len(cells) != 9 {
+		return text
+	}
+	if strings.HasPrefix(strings.TrimSpace(cells[3]), measuredMark) {
+		cells[3] = " measured "
+	}
+	return strings.Join([]string{"", cells[1], cells[2], cells[3], cells[6], cells[7], ""}, "|")
+}
+
+// section returns a heading's part of the page, up to the next, or nothing.
+func section(page, heading string) string {
+	i := strings.Index(page, heading)
+	if i < 0 {
+		return ""
+	}
+	rest := page[i+len(heading):]
+	if j := strings.Index(rest, "\n## "); j >= 0 {
+		rest = rest[:j]
+	}
+	return heading + strings.TrimRight(rest, "\n") + "\n"
+}
+
+// page lays the rows out.
+func (r *recorder) page(rows []line, kept ...string) string {
+	var b strings.Builder
+	b.WriteString(`# Checks
+
+Every comparison that the tests of this package make with a value from outside it: a closed form, a law, a published
+table or paper, a reference library. The page is written by the tests themselves (go test ./trace -update), and a run of
+all tests fails where it is stale. Each row names its test, the source of the expected value, the value got and the
+greatest error met, the error allowed, and how often the comparison was made; where it was made for many values their
+range stands under "expected" and the worst under "got". Materials, standard spectra and solids are checked by the tests
+of gems and facets.
+
+`)
+	title := func(file string) string {
+		for _, t := range themes {
+			if t.file == file {
+				return t.title
+			}
+		}
+		return "Others (" + file + ")"
+	}
+	files := []string{}
+	for _, t := range themes {
+		files = append(files, t.file)
+	}
+	for _, l := range rows {
+		if !slices.Contains(files, l.file) {
+			files = append(files, l.file)
+		}
+	}
+	for _, f := range files {
+		head := true
+		for _, l := range rows {
+			if l.file != f {
+				continue
+			}
+			if head {
+				fmt.Fprintf(&b, "## %s\n\n`%s`\n\n| check | source | expected | got | error | allowed | times |\n|---|---|---|---|---|---|---|\n", title(f), f)
+				head = false
+			}
+			b.WriteString(l.text + "\n")
+		}
+		if !head {
+			b.WriteString("\n")
+		}
+	}
+	for _, k := range kept {
+		if k != "" {
+			b.WriteString(k + "\n")
+		}
+	}
+	return strings.TrimRight(b.String(), "\n") + "\n"
+}
