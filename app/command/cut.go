@@ -85,7 +85,7 @@ func (k *cutCommand) Run(c call) error {
 	if err != nil {
 		return err
 	}
-	plans, materials, err := k.plans()
+	plans, materials, err := k.plans(c)
 	if err != nil {
 		return err
 	}
@@ -229,63 +229,78 @@ func programVersion() string {
 }
 
 // plans reads the plans and finds their materials. All faults are told at once.
-func (k *cutCommand) plans() (plans []*facets.Plan, materials []*gems.Material, err error) {
+func (k *cutCommand) plans(c call) (plans []*facets.Plan, materials []*gems.Material, err error) {
 	if err := k.oneSource(); err != nil {
 		return nil, nil, err
 	}
-	if k.Round != "" || k.Outline != "" {
-		return nil, nil, commandFaultf("measured proportions give a shape but no order of cutting; cut needs a PLAN")
+	if len(k.More) > 0 && (k.Round != "" || k.Outline != "") {
+		return nil, nil, commandFaultf("a PLAN and proportions are two stones; leave one out")
 	}
-	paths := k.More
-	if k.Plan != "" {
-		paths = append([]string{k.Plan}, k.More...)
-	}
+	paths := append([]string{k.Plan}, k.More...)
 	var faults facets.Faults
-	add := func(plan *facets.Plan, err error) error {
+	for _, path := range paths {
+		one := k.subjectFlags
+		one.Plan = path
+		plan, material, err := one.plan(c)
 		var fs facets.Faults
+		var told *fault
 		switch {
-		case errors.As(err, &fs):
+		case !errors.As(err, &told) && errors.As(err, &fs), errors.As(err, &told) && told.status == InputFault && errors.As(err, &fs):
 			faults = append(faults, fs...)
-			return nil
 		case err != nil:
-			return err
-		}
-		if k.Width != 0 {
-			plan.WidthMM = k.Width
-		}
-		material, err := k.materialOf(plan)
-		if err != nil && k.Material != "" {
-			return err
-		}
-		if err != nil {
-			faults = append(faults, materialFault(plan, err))
+			return nil, nil, err
 		}
 		plans, materials = append(plans, plan), append(materials, material)
-		return nil
-	}
-	if len(paths) == 0 {
-		if err := add(bundled()); err != nil {
-			return nil, nil, err
-		}
-	}
-	for _, path := range paths {
-		switch extension := strings.ToLower(filepath.Ext(path)); {
-		case extension == ".toml":
-			err = add(facets.OpenPlan(path))
-		case isStoneFile(path):
-			err = inputFault(facets.Faults{{File: path, Why: "a scan has a shape but no order of cutting", Remedy: "name a plan (.toml)"}})
-		default:
-			other := subjectFlags{Plan: path}
-			err = add(nil, other.neither())
-		}
-		if err != nil {
-			return nil, nil, err
-		}
 	}
 	if len(faults) > 0 {
 		return nil, nil, inputFault(faults)
 	}
 	return plans, materials, nil
+}
+
+// plan reads the plan that the flags name, or makes one of the stone that they name.
+func (f *subjectFlags) plan(c call) (*facets.Plan, *gems.Material, error) {
+	var plan *facets.Plan
+	var err error
+	switch {
+	case f.Round == "" && f.Outline == "" && f.Plan == "":
+		plan, err = bundled()
+	case strings.ToLower(filepath.Ext(f.Plan)) == ".toml":
+		plan, err = facets.OpenPlan(f.Plan)
+	default:
+		return f.planOfStone(c)
+	}
+	if err != nil {
+		return nil, nil, err
+	}
+	if f.Width != 0 {
+		plan.WidthMM = f.Width
+	}
+	material, err := f.materialOf(plan)
+	if err != nil && f.Material == "" {
+		err = facets.Faults{materialFault(plan, err)}
+	}
+	return plan, material, err
+}
+
+// usualGear is the gear of a plan that is made from a stone: it has teeth for the
+// symmetries 2, 3, 4, 6 and 8.
+const usualGear = 96
+
+// planOfStone makes a plan of a scan or of measured proportions.
+func (f *subjectFlags) planOfStone(c call) (*facets.Plan, *gems.Material, error) {
+	s, err := f.subject(c)
+	if err != nil {
+		return nil, nil, err
+	}
+	if err := s.wantMaterial(); err != nil {
+		return nil, nil, err
+	}
+	plan := facets.PlanOf(s.stone, usualGear)
+	plan.Name, plan.Material.Key = s.name, s.material.Key
+	plan.File = strings.ReplaceAll(s.name, " ", "-") + ".toml"
+	plan.Notes = "Made from the shape alone. What the facets were cut to meet is not known: every tier stops by distance."
+	return plan, s.material, nil
 }
 
 // The light on a sheet: small maps, and a ledger to three decimals.

@@ -219,8 +219,7 @@ func (l *press) item(tick bool, x, width float64, words string) {
 // grid sets words in cells of equal width, so that they stand in columns, and returns
 // its height. With draw false it only measures.
 func (l *press) grid(t drawing.Type, x, y, width float64, words []string, draw bool) float64 {
-	cell := gridCell(t, words)
-	across := max(1, int((width+0.5*t.Width("00")+1e-9)/cell))
+	cell, across := gridCell(t, words), l.gridAcross(t, width, words)
 	for i, w := range words {
 		if draw {
 			l.say(t, black(), x+float64(i%across)*cell, y+t.Leading()*(float64(i/across)+0.78), w)
@@ -236,6 +235,11 @@ func gridCell(t drawing.Type, words []string) float64 {
 		cell = max(cell, t.Width(w))
 	}
 	return cell + 0.5*t.Width("00")
+}
+
+// gridAcross returns how many words of a grid stand in a line of the given width.
+func (l *press) gridAcross(t drawing.Type, width float64, words []string) int {
+	return max(1, int((width+0.5*t.Width("00")+1e-9)/gridCell(t, words)))
 }
 
 // gridWidth returns the width of words in one line of a grid.

@@ -191,18 +191,35 @@ func (l *press) picture() float64 {
 func (l *press) table(rows []Row) {
 	c := l.columns()
 	l.tableHead(c)
-	for i := range rows {
-		r := &rows[i]
-		height := l.rowHeight(c, r)
+	for _, part := range l.parts(c, rows) {
+		height := l.rowHeight(c, &part)
 		if l.need(height) {
 			l.tableHead(c)
 		}
-		l.row(c, r, height)
+		l.row(c, &part, height)
 		l.y += height
 		l.page.Line(drawing.Style{Stroke: drawing.Grey(0x90), Width: thin}, drawing.Point{X: l.left(), Y: l.y}, drawing.Point{X: l.right(), Y: l.y})
 	}
 	l.y += 1.5
 	l.between(rows)
+}
+
+// parts returns the rows, those with more indices than a page holds cut into several.
+func (l *press) parts(c columns, rows []Row) []Row {
+	room := l.bottom() - l.margin() - 6*l.head().Leading()
+	most := max(1, int(room/l.index().Leading()))
+	var all []Row
+	for _, r := range rows {
+		across := l.gridAcross(l.index(), c.stop-c.index-columnGap, l.indexWords(&r))
+		for n := most * across; len(r.Settings) > n; {
+			part := r
+			part.Settings = r.Settings[:n]
+			all = append(all, part)
+			r.Settings = r.Settings[n:]
+		}
+		all = append(all, r)
+	}
+	return all
 }
 
 func (l *press) tableHead(c columns) {
@@ -321,7 +338,7 @@ func (l *press) row(c columns, r *Row, height float64) {
 	}
 	l.say(l.body(), pale(), c.number, first, fmt.Sprint(r.Number))
 	if edge := l.picture(); edge > 0 {
-		l.thumbnail(r, drawing.Point{X: c.picture + edge/2, Y: l.y + height/2}, edge-1)
+		l.thumbnail(r, drawing.Point{X: c.picture + edge/2, Y: l.y + min(height, edge+1)/2}, edge-1)
 	}
 	on := func(t drawing.Type) float64 { return first - 0.78*t.Leading() } // top of a text whose first line is on it
 	l.lines(l.tier(), black(), c.tier, on(l.tier()), c.angle-c.tier-1, r.Tier.Name)

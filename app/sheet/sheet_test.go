@@ -227,10 +227,11 @@ func TestEveryPageIsSound(t *testing.T) {
 	for _, name := range samplePlans(t) {
 		job := lit(t, sampleJob(t, name))
 		job.Gears = []int{64, 77}
+		s := sheetOf(t, job)
 		for _, paper := range Papers() {
 			for _, large := range []bool{false, true} {
-				job.Paper, job.Large = paper, large
-				for n, page := range sheetOf(t, job).Pages() {
+				s.Paper, s.Large = paper, large
+				for n, page := range s.Pages() {
 					where := fmt.Sprintf("%s, %s, large %v, page %d", name, paper.Name, large, n+1)
 					checkPage(t, where, page)
 				}
@@ -644,6 +645,29 @@ func TestNamesOfAllSorts(t *testing.T) {
 		fields := strings.Fields(row.text)
 		if first := strings.TrimSuffix(fields[len(fields)-1], "💎"); !strings.Contains(info, first) {
 			t.Errorf("%s: the title lost %q:\n%s", row.name, first, info)
+		}
+	}
+}
+
+// TestManyFacets: a tier with more indices than a page holds goes on over the next.
+func TestManyFacets(t *testing.T) {
+	plan := planOf(t, strings.NewReplacer("[12.4, 36.4, 60.4, 84.4]", "0\nfold = 300", "gear = 96", "gear = 1000").Replace(gappedPlan))
+	s := sheetOf(t, jobOf(t, plan))
+	for _, paper := range Papers() {
+		s.Paper = paper
+		found := map[string]bool{}
+		for n, page := range s.Pages() {
+			checkPage(t, fmt.Sprintf("%s, page %d", paper.Name, n+1), page)
+			for _, m := range page.Marks {
+				if text, ok := m.(*drawing.Text); ok {
+					found[text.Words] = true
+				}
+			}
+		}
+		for _, want := range []string{"1000", "3+0.12°", "997−0.12°", "500"} {
+			if !found[want] {
+				t.Errorf("%s: index %s is not on the sheet", paper.Name, want)
+			}
 		}
 	}
 }

@@ -139,9 +139,9 @@ const leastSlope = 0.05
 
 // labels writes each facet's tier name where it fits, and returns the tiers that are
 // seen but could not be written anywhere, and where the names stand.
-func (v *View) labels(p *drawing.Page, stone *facets.Stone, t drawing.Type) (left []string, places []drawing.Point) {
+func (v *View) labels(p *drawing.Page, stone *facets.Stone, t drawing.Type) (left []string, places []written) {
 	toward := v.toward()
-	written, seen := map[string]bool{}, map[string]bool{}
+	named, seen := map[string]bool{}, map[string]bool{}
 	var order []string
 	for i := range stone.Facets {
 		f := &stone.Facets[i]
@@ -162,12 +162,12 @@ func (v *View) labels(p *drawing.Page, stone *facets.Stone, t drawing.Type) (lef
 		if inside(points, drawing.Point{X: at.X - w, Y: at.Y - h}) && inside(points, drawing.Point{X: at.X + w, Y: at.Y - h}) &&
 			inside(points, drawing.Point{X: at.X - w, Y: at.Y + h}) && inside(points, drawing.Point{X: at.X + w, Y: at.Y + h}) {
 			p.Write(t, black(), drawing.Middle, drawing.Point{X: at.X, Y: at.Y + t.Height()/2}, name)
-			written[f.Tier] = true
-			places = append(places, at)
+			named[f.Tier] = true
+			places = append(places, written{at, 2 * w})
 		}
 	}
 	for _, name := range order {
-		if !written[name] {
+		if !named[name] {
 			left = append(left, name)
 		}
 	}
@@ -247,21 +247,32 @@ func (d *ringDrawing) draw(p *drawing.Page, at drawing.Point, edge float64) (sca
 	return v.Scale, lost
 }
 
+// written is where words stand on a drawing: their middle, and how wide they are.
+type written struct {
+	at    drawing.Point
+	width float64
+}
+
+// mostTried is how many facets of a tier a place for its name is sought from.
+const mostTried = 24
+
 // callOut writes a tier's name outside the ring, with a line to one of its facets: the
 // place with the shortest line that runs into no other words. It reports false where
 // there is none within the square of the given edge.
-func (d *ringDrawing) callOut(p *drawing.Page, v *View, tier string, radius, edge float64, taken *[]drawing.Point) bool {
+func (d *ringDrawing) callOut(p *drawing.Page, v *View, tier string, radius, edge float64, taken *[]written) bool {
 	stone := d.sheet.Solution.Stone
 	h := d.type_.Height()
 	name := d.type_.Cut(tier, 30)
 	width := d.type_.Width(name)
 	shortest := math.Inf(1)
 	var from, to drawing.Point
+	tried := 0
 	for i := range stone.Facets {
 		f := &stone.Facets[i]
-		if f.Tier != tier || f.Normal.Dot(v.toward()) < leastSlope {
+		if f.Tier != tier || f.Normal.Dot(v.toward()) < leastSlope || tried == mostTried {
 			continue
 		}
+		tried++
 		points := make([]drawing.Point, len(f.Corners))
 		for k, c := range f.Corners {
 			points[k] = v.Point(stone.Corners[c])
@@ -276,8 +287,8 @@ func (d *ringDrawing) callOut(p *drawing.Page, v *View, tier string, radius, edg
 				if length >= shortest || math.Abs(at.X-v.At.X)+width/2 > edge/2 || math.Abs(at.Y-v.At.Y)+h > edge/2 {
 					continue
 				}
-				if slices.ContainsFunc(*taken, func(o drawing.Point) bool {
-					return math.Abs(o.X-at.X) < width/2+1.2*h && math.Abs(o.Y-at.Y) < 1.9*h
+				if slices.ContainsFunc(*taken, func(o written) bool {
+					return math.Abs(o.at.X-at.X) < (o.width+width)/2+0.6*h && math.Abs(o.at.Y-at.Y) < 1.9*h
 				}) || nearLine(c, at, *taken, 0.9*h) {
 					continue
 				}
@@ -288,7 +299,7 @@ func (d *ringDrawing) callOut(p *drawing.Page, v *View, tier string, radius, edg
 	if math.IsInf(shortest, 1) {
 		return false
 	}
-	*taken = append(*taken, to)
+	*taken = append(*taken, written{to, width})
 	p.Circle(drawing.Style{Fill: black()}, from, 0.45)
 	end := 1 - h/shortest // the line stops short of the name
 	p.Line(drawing.Style{Stroke: black(), Width: thin}, from,
@@ -297,10 +308,12 @@ func (d *ringDrawing) callOut(p *drawing.Page, v *View, tier string, radius, edg
 	return true
 }
 
-// nearLine reports whether any of the points lies nearer to the line than the distance.
-func nearLine(a, b drawing.Point, points []drawing.Point, distance float64) bool {
+// nearLine reports whether the middle of any words lies nearer to the line than the
+// distance.
+func nearLine(a, b drawing.Point, all []written, distance float64) bool {
 	l := math.Hypot(b.X-a.X, b.Y-a.Y)
-	return slices.ContainsFunc(points, func(p drawing.Point) bool {
+	return slices.ContainsFunc(all, func(o written) bool {
+		p := o.at
 		t := min(max(((p.X-a.X)*(b.X-a.X)+(p.Y-a.Y)*(b.Y-a.Y))/(l*l), 0), 1)
 		return math.Hypot(p.X-a.X-t*(b.X-a.X), p.Y-a.Y-t*(b.Y-a.Y)) < distance
 	})
@@ -308,7 +321,7 @@ func nearLine(a, b drawing.Point, points []drawing.Point, distance float64) bool
 
 // gear draws the ring: a tick for every tooth, longer ones with their number where a
 // tier of this side has a facet. It returns where the numbers stand.
-func (d *ringDrawing) gear(p *drawing.Page, v *View, radius float64) (taken []drawing.Point) {
+func (d *ringDrawing) gear(p *drawing.Page, v *View, radius float64) (taken []written) {
 	m := &d.sheet.Machine
 	p.Circle(drawing.Style{Stroke: drawing.Grey(0x60), Width: thin}, v.At, radius)
 	place := func(shown, r float64) drawing.Point {
@@ -339,37 +352,43 @@ func (d *ringDrawing) gear(p *drawing.Page, v *View, radius float64) (taken []dr
 	}
 	var numbers []number
 	seen := map[string]bool{}
-	for i := range d.sheet.Rows {
-		r := &d.sheet.Rows[i]
-		if r.Facing != d.facing || r.Flat || r.Tier.Temporary {
-			continue
-		}
-		for _, s := range r.Settings {
-			words := fmt.Sprint(s.Tooth)
-			if s.Part != 0 {
-				words += signed(s.Part, 2)[:1]
+	// A girdle has the most facets and the least need of a ring: its numbers come last.
+	for _, girdle := range []bool{false, true} {
+		for i := range d.sheet.Rows {
+			r := &d.sheet.Rows[i]
+			if r.Facing != d.facing || r.Flat || r.Tier.Temporary || (r.Tier.Side == facets.Girdle) != girdle {
+				continue
 			}
-			if !seen[s.String()] {
-				seen[s.String()] = true
-				numbers = append(numbers, number{float64(s.Tooth) + s.Part, words})
+			for _, s := range r.Settings {
+				words := fmt.Sprint(s.Tooth)
+				switch {
+				case s.Part > 0:
+					words += "+"
+				case s.Part < 0:
+					words += "−"
+				}
+				if !seen[s.String()] {
+					seen[s.String()] = true
+					numbers = append(numbers, number{float64(s.Tooth) + s.Part, words})
+				}
 			}
 		}
 	}
 	// Numbers that would run into each other stand farther out, or are left to the table.
-	var placed [2][]drawing.Point
 	for _, n := range numbers {
 		tick(n.shown, 0.7*h, medium)
-		for row := range placed {
+		width := d.type_.Width(n.words)
+		for row := range 2 {
 			at := place(n.shown, radius+(1.5+1.5*float64(row))*h)
-			if slices.ContainsFunc(placed[row], func(o drawing.Point) bool {
-				return math.Abs(o.X-at.X) < 1.15*d.type_.Width("00.") && math.Abs(o.Y-at.Y) < 1.25*h
+			if slices.ContainsFunc(taken, func(o written) bool {
+				return math.Abs(o.at.X-at.X) < (o.width+width)/2+0.4 && math.Abs(o.at.Y-at.Y) < 1.25*h
 			}) {
 				continue
 			}
-			placed[row] = append(placed[row], at)
+			taken = append(taken, written{at, width})
 			p.Write(d.type_, black(), drawing.Middle, drawing.Point{X: at.X, Y: at.Y + h/2}, n.words)
 			break
 		}
 	}
-	return append(placed[0], placed[1]...)
+	return taken
 }
