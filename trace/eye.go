@@ -55,8 +55,14 @@ func LookAt(pictures []*Picture, inside []bool, distance float64) (*Seen, error)
 	if err := checkPictures(pictures, inside, distance); err != nil {
 		return nil, err
 	}
+	var places []int
+	for i, in := range inside {
+		if in {
+			places = append(places, i)
+		}
+	}
 	for n := mostTogether(len(pictures)); n >= leastPictures; n /= 2 {
-		if s := average(pictures, n, inside, distance); s != nil {
+		if s := average(pictures, n, places, distance); s != nil {
 			return s, nil
 		}
 	}
@@ -90,18 +96,13 @@ func checkPictures(pictures []*Picture, inside []bool, distance float64) error {
 	return nil
 }
 
-// average joins the pictures to n and averages each. It returns nil where one of them
-// has no ray about some pixel of the stone.
-func average(pictures []*Picture, n int, inside []bool, distance float64) *Seen {
-	s := &Seen{distance: distance}
-	for i, in := range inside {
-		if in {
-			s.places = append(s.places, i)
-		}
-	}
-	if len(s.places) == 0 {
+// average joins the pictures to n and averages each about the pixels given. It returns nil
+// where one of them has no ray about some pixel, and without any pixel.
+func average(pictures []*Picture, n int, places []int, distance float64) *Seen {
+	if len(places) == 0 {
 		return nil
 	}
+	s := &Seen{distance: distance, places: places}
 	k := newEyeKernel(eyeDisc(distance) / pictures[0].Pitch)
 	for g := range n {
 		// Every nth picture from the gth on, so that all are used.

@@ -4,7 +4,6 @@ import (
 	"errors"
 	"math"
 	"math/bits"
-	"slices"
 )
 
 // darkBelow is the luminance, relative to the white diffuser's, below which a place of
@@ -94,21 +93,22 @@ func (s *Seen) Fire() Estimate {
 // them. The definition is ours. Squares are products of independent pictures, so noise
 // adds nothing.
 //
-// Pictures that share their random numbers between the two views give a smaller
-// error, not another value.
+// Places are the same where they lie as far from the picture's middle, in mm: the pictures
+// of the two views may differ a little in size. Pictures that share their random numbers
+// between the views give a smaller error, not another value.
 func Sparkle(first, second []*Picture, insideFirst, insideSecond []bool, distance float64) (Estimate, error) {
 	if len(first) != len(second) {
 		return Estimate{}, errors.New("sparkle needs as many pictures of the one view as of the other")
 	}
-	both := slices.Clone(insideFirst)
-	for i := range both {
-		both[i] = both[i] && i < len(insideSecond) && insideSecond[i]
-	}
-	if err := checkPictures(slices.Concat(first, second), both, distance); err != nil {
+	if err := checkPictures(first, insideFirst, distance); err != nil {
 		return Estimate{}, err
 	}
+	if err := checkPictures(second, insideSecond, distance); err != nil {
+		return Estimate{}, err
+	}
+	here, there := samePlaces(first[0], second[0], insideFirst, insideSecond)
 	for n := mostTogether(len(first)); n >= leastPictures; n /= 2 {
-		a, b := average(first, n, both, distance), average(second, n, both, distance)
+		a, b := average(first, n, here, distance), average(second, n, there, distance)
 		if a == nil || b == nil {
 			continue
 		}
@@ -122,6 +122,23 @@ func Sparkle(first, second []*Picture, insideFirst, insideSecond []bool, distanc
 		return square.root(), nil
 	}
 	return Estimate{}, errFewRays
+}
+
+// samePlaces returns, side by side, the pixels of two pictures that lie as far from the
+// middle, to half a pixel, and show the stone in both.
+func samePlaces(a, b *Picture, insideA, insideB []bool) (inA, inB []int) {
+	// from carries the middle of a's ith pixel along an edge to the pixel of b there.
+	from := func(i int) int {
+		mm := (float64(i) + 0.5 - float64(a.Pixels)/2) * a.Pitch
+		return int(math.Floor(mm/b.Pitch + float64(b.Pixels)/2))
+	}
+	for place, in := range insideA {
+		x, y := from(place%a.Pixels), from(place/a.Pixels)
+		if in && x >= 0 && y >= 0 && x < b.Pixels && y < b.Pixels && insideB[y*b.Pixels+x] {
+			inA, inB = append(inA, place), append(inB, y*b.Pixels+x)
+		}
+	}
+	return inA, inB
 }
 
 // mean returns the mean of a set of pictures, place by place.

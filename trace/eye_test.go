@@ -242,6 +242,19 @@ func TestSparkle(t *testing.T) {
 	if still.Value > 5.4*still.Error {
 		t.Errorf("a stone that does not rock sparkles by %v", still)
 	}
+	// Pictures of another size: the second view's pixels are a tenth smaller, and what it
+	// shows at a distance from the middle is the same.
+	zoomed := func(x, y int) [3]float64 {
+		carry := func(i int) int { return int(math.Floor((float64(i)+0.5-fineView/2)*0.9 + fineView/2)) }
+		return first(carry(x), carry(y))
+	}
+	smaller, err := Sparkle(photograph(4, pitch, first, exact), photograph(4, 0.9*pitch, zoomed, exact), fineInside(), fineInside(), reading)
+	if err != nil {
+		t.Fatal(err)
+	}
+	// Half a pixel of a gradient of 0.2/9 at most, from the one and from the other.
+	near(t, "the same stone in smaller pixels", smaller.Value, 0, 0.2/9, "no change")
+
 	if _, err := Sparkle(photograph(8, pitch, first, exact), photograph(4, pitch, second, exact), fineInside(), fineInside(), reading); err == nil {
 		t.Error("unequal numbers of pictures are taken")
 	}

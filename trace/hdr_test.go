@@ -274,15 +274,20 @@ func (r *repeated) Read(p []byte) (int, error) {
 }
 
 func TestLargePanoramaIsAveragedDown(t *testing.T) {
-	const wide = 2500 // columns alternate in pairs of grey and twice the grey
+	const wide = 2500
 	row := []byte{2, 2, wide >> 8, wide & 0xff}
-	for range 3 {
-		row = append(row, bytes.Repeat([]byte{255, 100}, wide/127)...)
-		row = append(row, 128+wide%127, 100)
+	run := func(n int, value byte) {
+		for ; n > 0; n -= 127 {
+			row = append(row, 128+byte(min(n, 127)), value)
+		}
 	}
-	for x := 0; x < wide; x += 2 {
-		row = append(row, 2, 130, 131)
+	run(wide/2, 50) // red is three times as strong in the right half
+	run(wide/2, 150)
+	for x := 0; x < wide; x += 2 { // green alternates
+		row = append(row, 2, 100, 200)
 	}
+	run(wide, 100)
+	run(wide, 130)
 	head := fmt.Sprintf("#?RGBE\n\n-Y %d +X %d\n", wide/2, wide)
 	l, err := ReadPanorama(io.MultiReader(strings.NewReader(head), &repeated{row: row, left: wide / 2}), "large.hdr")
 	if err != nil {
@@ -292,7 +297,10 @@ func TestLargePanoramaIsAveragedDown(t *testing.T) {
 	if p.wide != keptWide || p.high != keptWide/2 || len(p.texels) != 3*keptWide*keptWide/2 {
 		t.Fatalf("kept %d × %d and %d numbers", p.wide, p.high, len(p.texels))
 	}
-	near(t, "mean level over the level of grey and a half", l.scale*1.5*100.5/256*4, 1, 2e-3, "mean of 1 and 2; columns of one kind and the other in turn")
+	for x, mantissa := range map[int]float64{0: 50.5, keptWide/2 - 1: 50.5, keptWide/2 + 1: 150.5, keptWide - 1: 150.5} {
+		near(t, "red", float64(p.texels[3*(100*keptWide+x)]), mantissa/256*4, 1e-6, "exponent 130: 2² × mantissa/256")
+	}
+	near(t, "green received", p.received[1], 150.5/256*4, 2e-3, "the mean of alternate columns, which are met 1.22 to a texel")
 }
 
 func TestHostilePanoramas(t *testing.T) {
@@ -333,8 +341,9 @@ func TestHostilePanoramas(t *testing.T) {
 		"stretch over the end":  {row8 + "\x090123456789", "does not fit", false},
 		"run of nothing":        {row8 + "\x80" + strings.Repeat("\x80", 200), "does not fit", false},
 		"stretch of nothing":    {row8 + "\x00\x00", "does not fit", false},
-		"old run at the start":  {head + "-Y 1 +X 2\n\x01\x01\x01\x05", "does not fit", false},
+		"old run at the start":  {head + "-Y 1 +X 2\n\x01\x01\x01\x01", "does not fit", false},
 		"old run over the end":  {head + "-Y 1 +X 2\n\x05\x05\x05\x80\x01\x01\x01\x09", "does not fit", false},
+		"old run in two digits": {head + "-Y 1 +X 2\n\x05\x05\x05\x80\x01\x01\x01\x00\x01\x01\x01\x01", "a run of 256 pixels", false},
 		"huge old run":          {head + "-Y 2 +X 4\n\x05\x05\x05\x80\x01\x01\x01\x00\x01\x01\x01\x00\x01\x01\x01\xff", "does not fit", false},
 		"black":                 {string(black.flat()), "black above the plane", false},
 		"black above":           {string(lower.flat()), "black above the plane", false},
