@@ -1,5 +1,15 @@
 package trace
 
+// Kernel names the form of arithmetic in which plain scenes are traced on this
+// processor: clean facets all around in one clear medium, under the even light. All
+// others are traced in float64.
+func Kernel() string {
+	if hasVectors() {
+		return "float32, eight rays at a time (AVX2)"
+	}
+	return "float64"
+}
+
 // ray is a viewing ray about to enter the stone.
 type ray struct {
 	facet  int32   // that it meets
