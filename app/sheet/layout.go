@@ -237,9 +237,14 @@ func gridCell(t drawing.Type, words []string) float64 {
 	return cell + 0.5*t.Width("00")
 }
 
-// gridAcross returns how many words of a grid stand in a line of the given width.
+// gridAcross returns how many words of a grid stand in a line of the given width: an
+// even number where opposite indices follow each other, so that pairs stay together.
 func (l *press) gridAcross(t drawing.Type, width float64, words []string) int {
-	return max(1, int((width+0.5*t.Width("00")+1e-9)/gridCell(t, words)))
+	n := max(1, int((width+0.5*t.Width("00")+1e-9)/gridCell(t, words)))
+	if l.sheet.Opposites && n > 2 {
+		n -= n % 2
+	}
+	return n
 }
 
 // gridWidth returns the width of words in one line of a grid.

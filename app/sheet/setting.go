@@ -37,7 +37,7 @@ func (s Setting) Words() string {
 	if s.Part < 0 {
 		sign = "−"
 	}
-	part := strconv.FormatFloat(math.Round(math.Abs(s.Part)*1e4)/1e4, 'f', -1, 64)
+	part := strconv.FormatFloat(math.Round(math.Abs(s.Part)*100)/100, 'f', -1, 64)
 	return fmt.Sprintf("%d %s %s tooth = %s degrees", s.Tooth, sign, part, rounded(math.Abs(s.Cheater.Degrees()), 2))
 }
 
