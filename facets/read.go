@@ -73,7 +73,14 @@ func ReadPlan(r io.Reader, file string) (*Plan, error) {
 		rd.plan.layout.newline = "\r\n"
 	}
 	rd.read(blocks)
+	if rd.more > 0 {
+		rd.faults = append(rd.faults, &Fault{File: file, Line: math.MaxInt32,
+			Why: fmt.Sprintf("and %d more faults", rd.more), Remedy: "mend these first"})
+	}
 	if err := rd.faults.Err(); err != nil {
+		if rd.more > 0 {
+			rd.faults[len(rd.faults)-1].Line = 0 // it was there to be sorted last
+		}
 		return nil, err
 	}
 	rd.plan.remember()
@@ -99,11 +106,19 @@ func refuse(data []byte) *Fault {
 type reader struct {
 	plan   *Plan
 	faults Faults
+	more   int            // faults beyond those
 	tier   string         // being read
 	lines  map[string]int // of the keys of the table being read
 }
 
+// mostFaults is how many faults of one file are told; the rest are counted.
+const mostFaults = 100
+
 func (r *reader) fault(line int, field, got, why, remedy string) {
+	if len(r.faults) == mostFaults {
+		r.more++
+		return
+	}
 	r.faults = append(r.faults, &Fault{
 		File: r.plan.File, Line: line, Tier: r.tier, Field: field, Got: shorten(got), Why: why,
 		Remedy: remedy,

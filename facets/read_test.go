@@ -142,6 +142,10 @@ func TestBadPlans(t *testing.T) {
 		{"a rough of unknown shape", change("gear = 96",
 			"gear = 96\nrough = { shape = \"egg\", size_mm = [1, 2, 3] }"),
 			[]string{"6 : this shape of rough"}},
+		{"too many keys in a table", "x = 1\n" + numbered("k%d = 1\n", 200), []string{"101 : too many keys"}},
+		{"too many keys in a small table", "a = [{" + strings.TrimSuffix(numbered("k%d = 1,", 200), ",") + "}]\n", []string{"1 : too many keys"}},
+		{"too many parts in a key", "a.b.c.d.e.f.g.h.i.j = 1\n", []string{"1 : too many parts"}},
+		{"too many tables", numbered("[[t%d]]\n", 7000), []string{"6001 : too many tables"}},
 		// What only solving finds.
 		{"open below",
 			change("[[tier]]\nname = \"P1\"\nside = \"pavilion\"\nangle = 45\nindex = [0, 24, 48, 72]\ncentre = 1\n\n", ""),
@@ -202,6 +206,24 @@ func TestBadPlans(t *testing.T) {
 				}
 			}
 		})
+	}
+}
+
+// numbered repeats a text with the numbers from 0 on in it.
+func numbered(format string, n int) string {
+	var b strings.Builder
+	for i := range n {
+		fmt.Fprintf(&b, format, i)
+	}
+	return b.String()
+}
+
+// Of thousands of faults a hundred are told, then their number, last.
+func TestManyFaults(t *testing.T) {
+	_, err := readText(strings.Repeat("[[tier]]\n", 1000))
+	var fs Faults
+	if !errors.As(err, &fs) || len(fs) != mostFaults+1 || !strings.HasSuffix(fs[mostFaults].Why, "more faults") {
+		t.Fatalf("got %d faults, the last %v", len(fs), fs[len(fs)-1])
 	}
 }
 

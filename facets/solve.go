@@ -55,7 +55,7 @@ func (p *Plan) Solve() (*Stone, error) {
 // later tiers change the flat. The share at the end is piecewise linear in the
 // depth of the cut, so a few secant steps suffice; halving as a last resort
 // gives a bit a time.
-const flatTries = 80
+const flatTries = 48
 
 // flatTolerance is how near a flat's share of the width comes to the plan's.
 const flatTolerance = 1e-12

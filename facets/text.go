@@ -60,8 +60,74 @@ type item struct {
 	line    int
 }
 
+// Limits on a plan's text, far above any plan's need. They keep the time to
+// refuse a hostile file short: the decoder looks through all keys of a table for
+// each new one.
+const (
+	mostKeys   = 100               // in one table
+	mostParts  = 8                 // of a dotted key
+	mostTables = 3 * MaxPlanFacets // in the file
+)
+
+// crowded reports the first place where a text goes beyond those limits. Faults
+// of syntax are left to the decoder, which tells them better.
+func crowded(data []byte) *Fault {
+	p := unstable.Parser{}
+	p.Reset(data)
+	lines := newLines(data)
+	keys, tables := 0, 0
+	tooMany := func(n *unstable.Node, what string) *Fault {
+		at := 0
+		for it := n.Key(); it.Next() && at == 0; {
+			at = int(it.Node().Raw.Offset)
+		}
+		return &Fault{Line: lines.number(at), Why: "the file has too many " + what, Remedy: "is this a cut plan?"}
+	}
+	for p.NextExpression() {
+		e := p.Expression()
+		parts := 0
+		for it := e.Key(); it.Next(); {
+			parts++
+		}
+		switch {
+		case parts > mostParts:
+			return tooMany(e, "parts in a key")
+		case e.Kind == unstable.KeyValue:
+			if keys += 1 + mostInside(e.Value()); keys > mostKeys {
+				return tooMany(e, "keys in one table")
+			}
+		default:
+			keys = 0
+			if tables++; tables > mostTables {
+				return tooMany(e, "tables")
+			}
+		}
+	}
+	return nil
+}
+
+// mostInside returns the number of keys of the largest inline table in a value.
+func mostInside(n *unstable.Node) int {
+	keys, inner := 0, 0
+	for it := n.Children(); it.Next(); {
+		c := it.Node()
+		if c.Kind == unstable.KeyValue {
+			keys++
+			c = c.Value()
+		}
+		if c.Kind == unstable.Array || c.Kind == unstable.InlineTable {
+			inner = max(inner, mostInside(c))
+		}
+	}
+	return max(keys, inner)
+}
+
 // splitBlocks parses a TOML text into its blocks. The error is a *Fault.
 func splitBlocks(data []byte, file string) ([]*block, error) {
+	if f := crowded(data); f != nil {
+		f.File = file
+		return nil, f
+	}
 	var whole map[string]any
 	if err := toml.Unmarshal(data, &whole); err != nil {
 		f := &Fault{File: file, Why: "this is not TOML",
