@@ -28,14 +28,14 @@ type Appearance struct {
 // each unless the settings say otherwise, and the rocking that sparkle is told for.
 const (
 	appearancePictures = 8
-	appearanceRays     = 8
+	appearanceRays     = 3
 	sparkleRock        = 2 * facets.Degree
 )
 
 // Appear looks at the scene as an eye does from a distance in mm, under the settings'
 // light (the even light if none is named): pictures in colour, averaged to what the eye
 // tells apart, and measures of them. Settings.Samples is the number of rays a pixel of
-// all pictures together, 64 if 0; Pixels and Error are chosen here. It calls report,
+// all pictures together, 24 if 0; Pixels and Error are chosen here. It calls report,
 // which may be nil, with the share that is done.
 func Appear(ctx context.Context, scene Scene, settings Settings, distance float64, report func(done float64)) ([]Appearance, error) {
 	if !(distance > 0) {
@@ -49,15 +49,15 @@ func Appear(ctx context.Context, scene Scene, settings Settings, distance float6
 		settings.Light = even
 	}
 	settings.Colour, settings.Error = true, 0
-	settings.Samples = max(1, settings.Samples/appearancePictures)
-	if settings.Samples == 1 {
-		settings.Samples = appearanceRays
+	if settings.Samples == 0 {
+		settings.Samples = appearanceRays * appearancePictures
 	}
-	span, err := scene.span(settings)
-	if err != nil {
+	settings.Samples = max(1, settings.Samples/appearancePictures)
+	var err error
+	if settings.Square, err = scene.square(settings); err != nil {
 		return nil, err
 	}
-	settings.Pixels = max(64, PixelsForEye(span, distance))
+	settings.Pixels = max(64, PixelsForEye(settings.Square, distance))
 
 	seed := settings.Seed
 	var looks [2][][]*Map // by rocking, column and picture
@@ -97,13 +97,19 @@ func Appear(ctx context.Context, scene Scene, settings Settings, distance float6
 	return all, nil
 }
 
-// span returns the edge of the picture in mm.
-func (s Scene) span(settings Settings) (float64, error) {
+// square returns the edge in mm of a picture about the stone's middle that holds it
+// from every side.
+func (s Scene) square(settings Settings) (float64, error) {
 	t, err := newTracer(s.Stone, settings)
 	if err != nil {
 		return 0, err
 	}
-	return 2 * t.outline.half * t.body.unit, nil
+	// From nearby the stone looks larger by what lies before its middle.
+	size := 2 * t.body.unit
+	if d := settings.Distance; d > 0 {
+		size *= d / (d - t.body.unit)
+	}
+	return size, nil
 }
 
 // picture returns the map's colours as the measures of an eye take them.

@@ -51,12 +51,12 @@ func newTracer(s *facets.Stone, settings Settings) (*tracer, error) {
 			// As seen from there, on the picture's plane through the stone's middle.
 			rest := settings.Distance/b.unit - corners[i].dot(f.eye)
 			if rest < 1 {
-				return nil, fmt.Errorf("the eye, %g mm away, is too close to the stone: choose more than %.0f mm", settings.Distance, 2*b.unit)
+				return nil, &InvalidError{fmt.Errorf("the eye, %g mm away, is too close to the stone: choose more than %.0f mm", settings.Distance, 2*b.unit)}
 			}
 			corners[i] = t.eyeAt.plus(settings.Distance/b.unit/rest, corners[i].plus(-1, t.eyeAt))
 		}
 	}
-	t.outline = newOutline(b, f, corners)
+	t.outline = newOutline(b, f, corners, settings.Square/b.unit)
 	for _, n := range b.normal {
 		t.toEye = append(t.toEye, n.dot(t.outline.eye))
 	}

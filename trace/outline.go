@@ -21,8 +21,9 @@ type outline struct {
 const looks = 64
 
 // newOutline projects the body along the eye's direction. corners are the body's
-// own, relative to its middle.
-func newOutline(b *body, f frame, corners []vec) *outline {
+// own, relative to its middle. square, above 0, is the edge of another square for the
+// picture, about the body's middle.
+func newOutline(b *body, f frame, corners []vec, square float64) *outline {
 	o := &outline{frame: &f}
 	lo, hi := vec{math.Inf(1), math.Inf(1), 0}, vec{math.Inf(-1), math.Inf(-1), 0}
 	for _, c := range corners {
@@ -31,6 +32,9 @@ func newOutline(b *body, f frame, corners []vec) *outline {
 	}
 	o.half = max(hi.x-lo.x, hi.y-lo.y) / 2
 	o.centre = vec{}.plus((lo.x+hi.x)/2, f.right).plus((lo.y+hi.y)/2, f.up)
+	if square > 0 {
+		o.half, o.centre = square/2, vec{}
+	}
 
 	// Along the eye's direction a facet toward the eye bounds the stone from above
 	// at height (1 - m.p)/m.eye over the picture's point p, the lowest of them all

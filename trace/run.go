@@ -77,7 +77,7 @@ type columnState struct {
 
 func newRun(scene Scene, settings Settings) (*run, error) {
 	if err := errors.Join(settings.check(), scene.check()); err != nil {
-		return nil, err
+		return nil, &InvalidError{err}
 	}
 	if settings.Pixels == 0 {
 		settings.Pixels = 300

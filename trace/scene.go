@@ -178,6 +178,12 @@ func (s Scene) tiersExist(what string, tiers []string) error {
 	return nil
 }
 
+// InvalidError is a scene or a setting that means nothing: the caller's to mend.
+type InvalidError struct{ Err error }
+
+func (e *InvalidError) Error() string { return e.Err.Error() }
+func (e *InvalidError) Unwrap() error { return e.Err }
+
 // known fails where the stone or a medium has no index at w.
 func (s Scene) known(w gems.Wavelength) error {
 	if _, err := s.Material.Index(w); err != nil {

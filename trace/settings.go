@@ -27,6 +27,7 @@ type Settings struct {
 	Distance   float64         // of the eye from the stone's middle, mm; 0 for an eye far away
 	Aside      float64         // of the eye from the line of sight, to the right, mm: half the distance between two eyes
 	Pixels     int             // of a map's edge; 0 means 300
+	Square     float64         // mm; edge of the picture about the stone's middle, so that views share it; 0 for the outline's own
 	Samples    int             // mean rays per pixel at which tracing stops; 0 means until Error is reached
 	Error      float64         // stop when the standard error of every ledger entry is below; 0 means 0.0005
 	Seed       uint64          // same seed, same result, for any number of workers
@@ -57,6 +58,7 @@ func (s Settings) check() error {
 		in("head angle", s.Head.Degrees(), 0, 90),
 		in("luminance below", s.Below, 0, 1),
 		in("number of pixels", float64(s.Pixels), 0, 8192),
+		in("edge of the picture", s.Square, 0, 1e6),
 		in("samples a pixel", float64(s.Samples), 0, 1<<20),
 		in("error", s.Error, 0, 1),
 		in("distance of the eye", s.Distance, 0, 1e6),

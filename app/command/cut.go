@@ -81,7 +81,7 @@ func (k *cutCommand) Run(c call) error {
 	if err != nil {
 		return err
 	}
-	media, err := surroundings(k.In)
+	media, err := surroundings("--in", k.In)
 	if err != nil {
 		return err
 	}

@@ -12,6 +12,8 @@ import (
 	"strings"
 
 	"github.com/alecthomas/kong"
+
+	"pavilight/trace"
 )
 
 // line is the whole command line.
@@ -57,6 +59,7 @@ func run(ctx context.Context, args []string, env Environment, out io.Writer) err
 		kong.Description(description),
 		kong.Writers(out, env.Stderr),
 		kong.NoDefaultHelp(),
+		kong.Vars{"lights": strings.Join(trace.LightNames(), ", "), "illuminants": strings.Join(trace.IlluminantNames(), ", ")},
 		kong.ConfigureHelp(kong.HelpOptions{Compact: true, WrapUpperBound: 100}),
 		kong.NamedMapper("number", kong.MapperFunc(decodeNumber)),
 		kong.NamedMapper("word", kong.MapperFunc(decodeWord)),

@@ -66,8 +66,8 @@ func TestFlagsReachTheTracer(t *testing.T) {
 		{[]string{"--below", "0.5"}, func(s *trace.Settings) { s.Below = 0.5 }},
 		{[]string{"--unpolarised"}, func(s *trace.Settings) { s.Averaged = true }},
 		{[]string{"--seed", "7"}, func(s *trace.Settings) { s.Seed = 7 }},
-		{[]string{"--pixels", "150"}, func(s *trace.Settings) { s.Pixels = 150 }},
-		{[]string{"--samples", "400"}, func(s *trace.Settings) { s.Samples = 400 }},
+		{[]string{"--pixels", "500"}, func(s *trace.Settings) { s.Pixels = 500 }},
+		{[]string{"--samples", "4000"}, func(s *trace.Settings) { s.Samples = 4000 }},
 	}
 	found := func(s trace.Settings) lookMedium {
 		result, err := trace.Run(context.Background(), scene(t), s, nil)

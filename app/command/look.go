@@ -18,10 +18,9 @@ import (
 // lookCommand traces a stone and prints its ledgers.
 type lookCommand struct {
 	subjectFlags
-	In          string  `default:"air,water,oil" type:"word" placeholder:"NAMES" help:"What surrounds the stone: names of the material table or plain refractive indices, with commas between (${default})."`
+	sceneFlags
 	Tilt        float64 `type:"number" least:"-89" most:"89" unit:"degrees" placeholder:"DEG" help:"How far the stone is rocked, -89 to 89 degrees (0)."`
 	Turn        float64 `type:"number" least:"-360" most:"360" unit:"degrees" placeholder:"DEG" help:"Toward which azimuth it is rocked, -360 to 360 degrees (0)."`
-	Light       string  `default:"even" type:"word" placeholder:"NAME" help:"The light: even, the same from every upward direction (${default})."`
 	Below       float64 `type:"number" least:"0" most:"1" unit:"(1 is white paper)" placeholder:"L" help:"Luminance of what lies under the stone, 0 to 1; 1 is white paper (0)."`
 	Head        float64 `default:"10" type:"number" least:"0" most:"90" unit:"degrees" placeholder:"DEG" help:"Half-angle of the cone that the viewer's head blocks, 0 to 90 degrees (${default})."`
 	Wavelength  float64 `type:"number" least:"400" most:"700" unit:"nm" placeholder:"NM" help:"One wavelength, 400 to 700 nm; without it the spectrum."`
@@ -31,6 +30,8 @@ type lookCommand struct {
 	Seed        uint64  `default:"1" type:"number" placeholder:"N" help:"Seed of the random numbers; the same seed gives the same maps (${default})."`
 	Workers     int     `type:"number" least:"0" most:"1024" unit:"(0 for all cores)" placeholder:"N" help:"How many cores may trace, 0 to 1024; 0 for all (0)."`
 	Unpolarised bool    `help:"Average the two polarisations at every facet, instead of tracking the state of the light."`
+	Colour      bool    `help:"Show the stone in true colour under the light too, and measure what an eye makes of it: dark area, contrast, fire, sparkle."`
+	Paths       bool    `help:"Tell the mean way of the light inside the stone."`
 	Out         string  `type:"word" placeholder:"DIR" help:"Write the maps as pictures into this folder."`
 }
 
@@ -69,6 +70,21 @@ type lookMedium struct {
 	WindowedArea  float64      `json:"windowed_area"`
 	Segments      int64        `json:"segments"`
 	Seconds       float64      `json:"seconds"`
+	PathLengthMM  *float64     `json:"path_length_mm,omitempty"` // only where it was asked for
+	Seen          *lookSeen    `json:"seen,omitempty"`           // likewise
+}
+
+// lookSeen is what an eye makes of the stone under one light.
+type lookSeen struct {
+	Light      string         `json:"light"`
+	Spectrum   string         `json:"spectrum"`
+	DistanceMM float64        `json:"distance_mm"`
+	WidthMM    float64        `json:"width_mm"`
+	Luminance  trace.Estimate `json:"luminance"`
+	DarkArea   trace.Estimate `json:"dark_area"`
+	Contrast   trace.Estimate `json:"contrast"`
+	Fire       trace.Estimate `json:"fire"`
+	Sparkle    trace.Estimate `json:"sparkle"`
 }
 
 // mostCells bounds the pixels of all maps together. One takes about 60 bytes, three
@@ -77,16 +93,17 @@ const mostCells = 5e6
 
 // Run traces the stone and prints what was found.
 func (l *lookCommand) Run(c call) error {
-	if l.Light != "even" {
-		return commandFaultf("--light %s: there is no such light yet; use --light even", l.Light)
-	}
-	media, err := surroundings(l.In)
+	around, err := l.surroundings()
 	if err != nil {
 		return err
 	}
-	if most := int(math.Sqrt(mostCells / float64(len(media)))); l.Pixels > most {
+	if most := int(math.Sqrt(mostCells / float64(len(around)))); l.Pixels > most {
 		return commandFaultf("--pixels: %d pixels in %d surroundings do not fit into memory; use at most %d, or fewer surroundings",
-			l.Pixels, len(media), most)
+			l.Pixels, len(around), most)
+	}
+	light, err := l.light(l.Colour)
+	if err != nil {
+		return err
 	}
 	s, err := l.subject(c)
 	if err != nil {
@@ -95,7 +112,15 @@ func (l *lookCommand) Run(c call) error {
 	if err := s.wantMaterial(); err != nil {
 		return err
 	}
+	scene, err := l.scene(s)
+	if err != nil {
+		return err
+	}
 	settings := trace.Settings{
+		Light:      light,
+		Paths:      l.Paths,
+		Distance:   l.Distance,
+		Aside:      l.Aside,
 		View:       trace.View{Tilt: facets.Angle(l.Tilt) * facets.Degree, Turn: facets.Angle(l.Turn) * facets.Degree},
 		Head:       facets.Angle(l.Head) * facets.Degree,
 		Wavelength: gems.Wavelength(l.Wavelength),
@@ -114,12 +139,26 @@ func (l *lookCommand) Run(c call) error {
 		}
 	}
 	bar := newProgress(c.env.Stderr, c.env.Terminal)
-	result, err := trace.Run(c, trace.Scene{Stone: s.stone, Material: s.material, Surroundings: trace.Around(media...)}, settings,
-		func(r *trace.Result) { bar.show(r.Done) })
+	ledgers := 1.0 // share of the work
+	if l.Colour {
+		ledgers = 0.3
+	}
+	result, err := trace.Run(c, scene, settings, func(r *trace.Result) { bar.show(ledgers * r.Done) })
+	var looks []trace.Appearance
+	if err == nil && l.Colour {
+		distance := l.Distance
+		if distance == 0 {
+			distance = usualDistance
+		}
+		looks, err = trace.Appear(c, scene, settings, distance, func(done float64) { bar.show(ledgers + (1-ledgers)*done) })
+	}
 	bar.clear()
 	if err != nil {
 		var outside *gems.RangeError
+		var invalid *trace.InvalidError
 		switch isRange := errors.As(err, &outside); {
+		case errors.As(err, &invalid):
+			return commandFault(err)
 		case isRange && l.Wavelength != 0:
 			return commandFaultf("--wavelength: %w", err)
 		case isRange: // the spectrum reaches beyond what is known of a material
@@ -135,42 +174,45 @@ func (l *lookCommand) Run(c call) error {
 			c.warn("%s: the standard error is %.2g, not below %g: the run ended at its greatest length", column.Medium.Name, e, l.Error)
 		}
 	}
-	report := l.report(s, result)
+	report := l.report(s, scene, result, looks)
 	if folder != nil {
-		if err := folder.write(c, s, report, result); err != nil {
+		if err := folder.write(c, s, report, result, looks); err != nil {
 			return err
 		}
 	}
 	if c.json {
 		return printJSON(c.out, report)
 	}
-	printLook(c.out, s, report, result)
+	printLook(c.out, s, scene, report, result, looks)
 	if folder != nil {
 		fmt.Fprintf(c.out, "\nMaps written to %s: %s\n", folder.path, strings.Join(folder.written, " "))
 	}
 	return nil
 }
 
-// surroundings reads a list of names and plain refractive indices.
-func surroundings(list string) ([]*gems.Material, error) {
+// usualDistance is that of a stone held in the hand, mm.
+const usualDistance = 300
+
+// surroundings reads a flag's list of names and plain refractive indices.
+func surroundings(flag, list string) ([]*gems.Material, error) {
 	const most = 12 // columns that a sheet can hold side by side
 	names := strings.Split(list, ",")
 	if len(names) > most {
-		return nil, commandFaultf("--in: %d surroundings are too many; use at most %d", len(names), most)
+		return nil, commandFaultf("%s: %d surroundings are too many; use at most %d", flag, len(names), most)
 	}
 	var media []*gems.Material
 	seen := map[string]bool{}
 	for _, name := range names {
 		name = strings.TrimSpace(name)
 		if name == "" {
-			return nil, commandFaultf("--in %q: a name is missing beside a comma", list)
+			return nil, commandFaultf("%s %q: a name is missing beside a comma", flag, list)
 		}
-		m, err := surrounding(name)
+		m, err := surrounding(flag, name)
 		if err != nil {
 			return nil, err
 		}
 		if seen[m.Key] {
-			return nil, commandFaultf("--in %q: %s stands there twice", list, name)
+			return nil, commandFaultf("%s %q: %s stands there twice", flag, list, name)
 		}
 		seen[m.Key] = true
 		media = append(media, m)
@@ -178,23 +220,23 @@ func surroundings(list string) ([]*gems.Material, error) {
 	return media, nil
 }
 
-func surrounding(name string) (*gems.Material, error) {
+func surrounding(flag, name string) (*gems.Material, error) {
 	index, err := strconv.ParseFloat(name, 64)
 	if err != nil {
 		return findMaterial(name)
 	}
 	m, err := gems.Plain(name, index, 0)
 	if err != nil {
-		return nil, commandFaultf("--in: %w", err)
+		return nil, commandFaultf("%s: %w", flag, err)
 	}
 	return m, nil
 }
 
-func (l *lookCommand) report(s *subject, result *trace.Result) *lookResult {
+func (l *lookCommand) report(s *subject, scene trace.Scene, result *trace.Result, looks []trace.Appearance) *lookResult {
 	report := &lookResult{
 		Plan:         s.name,
 		Material:     s.material.Key,
-		BodyColour:   s.material.Describe().BodyColour,
+		BodyColour:   scene.Material.Describe().BodyColour,
 		WidthMM:      s.measures.WidthMM,
 		View:         lookView{TiltDeg: l.Tilt, TurnDeg: l.Turn},
 		Light:        l.Light,
@@ -226,6 +268,16 @@ func (l *lookCommand) report(s *subject, result *trace.Result) *lookResult {
 		if column.HasCritical {
 			critical := column.Critical.Degrees()
 			medium.CriticalDeg = &critical
+		}
+		if column.Dish {
+			medium.Arrangement = "dish"
+		}
+		if l.Paths {
+			medium.PathLengthMM = &column.PathLength
+		}
+		if looks != nil {
+			a := &looks[i]
+			medium.Seen = &lookSeen{a.Light.Name, a.Light.Illuminant.Name, a.Distance, report.WidthMM, a.Luminance, a.DarkArea, a.Contrast, a.Fire, a.Sparkle}
 		}
 		report.Media = append(report.Media, medium)
 	}
@@ -264,9 +316,9 @@ func (r *lookResult) stoneWords(s *subject) string {
 }
 
 // remarks says how far the indices behind the numbers are to be trusted.
-func remarks(s *subject, result *trace.Result) []string {
+func remarks(s *subject, doubly bool, result *trace.Result) []string {
 	var all []string
-	if c := s.material.Character(); c != gems.Isotropic {
+	if c := s.material.Character(); c != gems.Isotropic && !doubly {
 		which := "ordinary"
 		if c.Biaxial() {
 			which = "mean"
@@ -293,9 +345,9 @@ func media(result *trace.Result) []*gems.Material {
 	return all
 }
 
-func printLook(w io.Writer, s *subject, r *lookResult, result *trace.Result) {
+func printLook(w io.Writer, s *subject, scene trace.Scene, r *lookResult, result *trace.Result, looks []trace.Appearance) {
 	fmt.Fprintf(w, "%s: %s\n%s\n", r.Plan, r.stoneWords(s), r.viewWords())
-	for _, remark := range remarks(s, result) {
+	for _, remark := range remarks(s, scene.Axis != nil, result) {
 		fmt.Fprintln(w, remark)
 	}
 	fmt.Fprintln(w)
@@ -307,7 +359,7 @@ func printLook(w io.Writer, s *subject, r *lookResult, result *trace.Result) {
 		}
 		fmt.Fprintln(t)
 	}
-	row("", func(i int) string { return result.Columns[i].Medium.Name })
+	row("", func(i int) string { return result.Columns[i].Medium.Name + dishWord(r.Media[i].Arrangement) })
 	row("index around", func(i int) string { return fmt.Sprintf("%.4f", r.Media[i].IndexMedium) })
 	row("index of the stone", func(i int) string { return fmt.Sprintf("%.4f", r.Media[i].IndexStone) })
 	row("critical angle", func(i int) string { return inDegrees(r.Media[i].CriticalDeg, "there is none") })
@@ -323,10 +375,52 @@ func printLook(w io.Writer, s *subject, r *lookResult, result *trace.Result) {
 		return withError(r.Media[i].WindowedArea, result.Columns[i].WindowedError)
 	})
 	row("lit, white paper 1", func(i int) string { return fmt.Sprintf("%.*f", decimals, r.Media[i].Lit.Sum) })
+	if r.Media[0].PathLengthMM != nil {
+		row("way inside", func(i int) string { return fmt.Sprintf("%.2f mm", *r.Media[i].PathLengthMM) })
+	}
 	t.Flush()
+	if looks != nil {
+		printSeen(w, looks, r)
+	}
 	rays := float64(result.Rays)
 	fmt.Fprintf(w, "\nShares of one viewing ray, ± the standard error; the first six sum to 1. "+
 		"%s rays in %.2f s.\n", thousands(rays), result.Elapsed.Seconds())
+}
+
+// dishWord tells a column in a dish from one all around.
+func dishWord(arrangement string) string {
+	if arrangement == "dish" {
+		return ", in a dish"
+	}
+	return ""
+}
+
+// printSeen prints what an eye makes of the stone.
+func printSeen(w io.Writer, looks []trace.Appearance, r *lookResult) {
+	first := looks[0]
+	fmt.Fprintf(w, "\nTo an eye %g mm away, the stone %.2f mm wide, %s light of spectrum %s:\n", first.Distance, r.WidthMM,
+		first.Light.Name, first.Light.Illuminant.Name)
+	t := tabwriter.NewWriter(w, 0, 0, 3, ' ', 0)
+	for _, m := range []struct {
+		name string
+		of   func(a *trace.Appearance) trace.Estimate
+	}{
+		{"luminance, white paper 1", func(a *trace.Appearance) trace.Estimate { return a.Luminance }},
+		{"dark area", func(a *trace.Appearance) trace.Estimate { return a.DarkArea }},
+		{"contrast", func(a *trace.Appearance) trace.Estimate { return a.Contrast }},
+		{"fire", func(a *trace.Appearance) trace.Estimate { return a.Fire }},
+		{"sparkle", func(a *trace.Appearance) trace.Estimate { return a.Sparkle }},
+	} {
+		fmt.Fprint(t, m.name)
+		for i := range looks {
+			fmt.Fprint(t, "\t", m.of(&looks[i]))
+		}
+		fmt.Fprintln(t)
+	}
+	t.Flush()
+	if !first.Light.Small {
+		fmt.Fprintln(w, "Fire tells stones apart only under small lamps (--light lamps).")
+	}
 }
 
 // thousands writes a count with its unit, to three figures.

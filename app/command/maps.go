@@ -52,7 +52,7 @@ func shownRows() []shown {
 }
 
 // write writes a picture of each quantity in each medium, and the sheet of them all.
-func (f *outFolder) write(ctx context.Context, s *subject, report *lookResult, result *trace.Result) error {
+func (f *outFolder) write(ctx context.Context, s *subject, report *lookResult, result *trace.Result, looks []trace.Appearance) error {
 	sheet := picture.Sheet{
 		Title:  report.Plan,
 		Lines:  []string{report.stoneWords(s), report.viewWords()},
@@ -62,7 +62,7 @@ func (f *outFolder) write(ctx context.Context, s *subject, report *lookResult, r
 		var plates []picture.Plate
 		for i := range result.Columns {
 			column, medium := &result.Columns[i], &report.Media[i]
-			around := fmt.Sprintf("in %s, index %.4f", medium.Name, medium.IndexMedium)
+			around := fmt.Sprintf("in %s%s, index %.4f", medium.Name, dishWord(medium.Arrangement), medium.IndexMedium)
 			critical := "critical angle " + inDegrees(medium.CriticalDeg, "there is none")
 			plate := picture.Plate{
 				Title:  row.title,
@@ -81,7 +81,7 @@ func (f *outFolder) write(ctx context.Context, s *subject, report *lookResult, r
 			if err != nil {
 				return err
 			}
-			if err := f.png(ctx, fmt.Sprintf("%s-%s.png", row.file, fileWord(medium.Name)), img); err != nil {
+			if err := f.png(ctx, fmt.Sprintf("%s-%s.png", row.file, medium.fileWord()), img); err != nil {
 				return err
 			}
 			plates = append(plates, plate)
@@ -90,6 +90,11 @@ func (f *outFolder) write(ctx context.Context, s *subject, report *lookResult, r
 	}
 	for i := range report.Media {
 		sheet.Ledger = append(sheet.Ledger, ledgerLines(&report.Media[i]))
+	}
+	for i := range looks {
+		if err := f.png(ctx, fmt.Sprintf("colour-%s.png", report.Media[i].fileWord()), trueColour(&looks[i])); err != nil {
+			return err
+		}
 	}
 	img, err := sheet.Draw()
 	if err != nil {
@@ -105,6 +110,23 @@ func ledgerLines(m *lookMedium) []string {
 		lines = append(lines, fmt.Sprintf("%s %s", q, withError(q.Of(m.Ledger), q.Of(m.StandardError))))
 	}
 	return append(lines, fmt.Sprintf("leaky area %.4f, windowed area %.4f", m.LeakyArea, m.WindowedArea))
+}
+
+// trueColour is the picture as an eye sees it that is used to the light, a place as
+// bright as the white diffuser at two thirds of the screen's white.
+func trueColour(a *trace.Appearance) image.Image {
+	const expose = 2.0 / 3
+	display := trace.NewDisplay(a.Light.Illuminant.White(), expose)
+	return picture.Seen(a.XYZ, a.Pixels, display.Colour)
+}
+
+// fileWord is the column's name in files.
+func (m *lookMedium) fileWord() string {
+	word := fileWord(m.Name)
+	if m.Arrangement == "dish" {
+		word += "-dish"
+	}
+	return word
 }
 
 // fileWord makes a name fit for a file: letters, digits, dot, dash.

@@ -1,0 +1,231 @@
+package command
+
+import (
+	"errors"
+	"fmt"
+	"math"
+	"os"
+	"strconv"
+	"strings"
+
+	"github.com/go-gl/mathgl/mgl64"
+
+	"pavilight/facets"
+	"pavilight/gems"
+	"pavilight/trace"
+)
+
+// sceneFlags say what a stone lies in, what lies on it and what shines on it.
+type sceneFlags struct {
+	In         string   `default:"air,water,oil" type:"word" placeholder:"NAMES" help:"What surrounds the stone: names of the material table or plain refractive indices, with commas between (${default})."`
+	Dish       string   `type:"word" placeholder:"NAMES" help:"More columns: liquids in a dish with a flat surface, seen from the air above."`
+	Wet        string   `type:"word" placeholder:"TIERS" help:"Only these tiers touch what --in names, with commas between; all others are in air."`
+	Film       []string `sep:"none" placeholder:"TIERS=INDEX:NM" help:"A film on some tiers: its refractive index and thickness, and after another colon its extinction. May be given again."`
+	Ground     string   `type:"word" placeholder:"R" help:"Diffuse ground under the stone that sends back this share of light, 0 to 1: white paper is 0.8 or so."`
+	Setting    string   `type:"word" placeholder:"R[,OPEN]" help:"Diffuse wall right behind the pavilion that sends back this share of light; OPEN is the share of the pavilion's depth left open at the culet."`
+	Body       string   `type:"word" placeholder:"COLOUR:MM" help:"Body colour #rrggbb as seen through so many mm of daylight; COLOUR/COLOUR for ordinary and extraordinary ray."`
+	Axis       string   `type:"word" placeholder:"TILT,AZIM" help:"Direction of the optic axis of a uniaxial stone, in degrees from the table's normal and around it: both its rays are followed."`
+	Light      string   `default:"even" type:"word" placeholder:"NAME" help:"The light: ${lights}, or the path of a .hdr panorama (${default})."`
+	Illuminant string   `type:"word" placeholder:"NAME" help:"Another spectrum for the light: ${illuminants}."`
+	Zenith     string   `type:"word" placeholder:"ELEV,AZIM" help:"Where the light's zenith stands, in degrees over the picture's plane and around it from up, anticlockwise; without it the eye."`
+	Distance   float64  `type:"number" least:"0" most:"100000" unit:"mm" placeholder:"MM" help:"Distance of the eye; 0 is far away (0)."`
+	Aside      float64  `type:"number" least:"-100" most:"100" unit:"mm" placeholder:"MM" help:"How far right of the line of sight the eye stands: half the distance between two eyes (0)."`
+}
+
+// surroundings reads --in, --dish and --wet.
+func (f *sceneFlags) surroundings() ([]trace.Surrounding, error) {
+	media, err := surroundings("--in", f.In)
+	if err != nil {
+		return nil, err
+	}
+	all := trace.Around(media...)
+	if f.Wet != "" {
+		air, err := gems.Find("air")
+		if err != nil {
+			return nil, err
+		}
+		for i := range all {
+			all[i].Tiers, all[i].Beyond = splitList(f.Wet), air
+		}
+	}
+	if f.Dish != "" {
+		liquids, err := surroundings("--dish", f.Dish)
+		if err != nil {
+			return nil, err
+		}
+		for _, m := range liquids {
+			all = append(all, trace.Surrounding{Medium: m, Dish: true})
+		}
+	}
+	return all, nil
+}
+
+// scene returns the stone in all that the flags put around it.
+func (f *sceneFlags) scene(s *subject) (trace.Scene, error) {
+	scene := trace.Scene{Stone: s.stone, Material: s.material}
+	var err error
+	if scene.Surroundings, err = f.surroundings(); err != nil {
+		return scene, err
+	}
+	for _, text := range f.Film {
+		c, err := readFilm(text)
+		if err != nil {
+			return scene, err
+		}
+		scene.Coatings = append(scene.Coatings, c)
+	}
+	if f.Ground != "" {
+		r, err := readNumbers("--ground", f.Ground, 1, 1)
+		if err != nil {
+			return scene, err
+		}
+		scene.Ground = &trace.Ground{Reflectance: r[0]}
+	}
+	if f.Setting != "" {
+		r, err := readNumbers("--setting", f.Setting, 1, 2)
+		if err != nil {
+			return scene, err
+		}
+		scene.Setting = &trace.Setting{Reflectance: r[0]}
+		if len(r) == 2 {
+			scene.Setting.Open = r[1]
+		}
+	}
+	if f.Axis != "" {
+		v, err := readNumbers("--axis", f.Axis, 2, 2)
+		if err != nil {
+			return scene, err
+		}
+		sinT, cosT := math.Sincos((facets.Angle(v[0]) * facets.Degree).Radians())
+		sinA, cosA := math.Sincos((facets.Angle(v[1]) * facets.Degree).Radians())
+		scene.Axis = &mgl64.Vec3{sinT * cosA, sinT * sinA, cosT}
+	}
+	if f.Body != "" {
+		a, err := readBody(f.Body)
+		if err != nil {
+			return scene, err
+		}
+		coloured := *s.material
+		coloured.Absorption = a
+		scene.Material = &coloured
+	}
+	return scene, nil
+}
+
+// light returns the light to trace with: nil for the even light without a spectrum of
+// its own, which the fast tracer knows.
+func (f *sceneFlags) light(colour bool) (*trace.Light, error) {
+	if f.Light == "even" && f.Illuminant == "" && !colour && f.Zenith == "" {
+		return nil, nil
+	}
+	var zenith []mgl64.Vec3
+	if f.Zenith != "" {
+		v, err := readNumbers("--zenith", f.Zenith, 2, 2)
+		if err != nil {
+			return nil, err
+		}
+		zenith = append(zenith, trace.DirectionOf(facets.Angle(v[0])*facets.Degree, facets.Angle(v[1])*facets.Degree))
+	}
+	var light *trace.Light
+	var err error
+	if strings.HasSuffix(strings.ToLower(f.Light), ".hdr") {
+		file, openErr := os.Open(f.Light)
+		if openErr != nil {
+			return nil, inputFault(missing(f.Light, openErr))
+		}
+		defer file.Close()
+		if light, err = trace.ReadPanorama(file, f.Light, zenith...); err != nil {
+			return nil, inputFault(err)
+		}
+	} else if light, err = trace.FindLight(f.Light, zenith...); err != nil {
+		return nil, commandFaultf("--light: %w", err)
+	}
+	spectrum := f.Illuminant
+	if spectrum == "" && f.Light == "even" && colour {
+		spectrum = "D65" // daylight, since equal energy is the colour of no lamp
+	}
+	if spectrum != "" {
+		i, err := trace.FindIlluminant(spectrum)
+		if err != nil {
+			return nil, commandFaultf("--illuminant: %w", err)
+		}
+		light = light.Under(i)
+	}
+	return light, nil
+}
+
+// readFilm reads TIERS=INDEX:NM or TIERS=INDEX:NM:EXTINCTION.
+func readFilm(text string) (trace.Coating, error) {
+	tiers, rest, ok := strings.Cut(text, "=")
+	bad := commandFaultf("--film %q: write tiers, refractive index and thickness in nm, such as P1,P2=1.48:20000", text)
+	if !ok || strings.TrimSpace(tiers) == "" {
+		return trace.Coating{}, bad
+	}
+	var numbers []float64
+	for _, part := range strings.Split(rest, ":") {
+		v, err := strconv.ParseFloat(strings.TrimSpace(part), 64)
+		if err != nil {
+			return trace.Coating{}, bad
+		}
+		numbers = append(numbers, v)
+	}
+	if len(numbers) < 2 || len(numbers) > 3 {
+		return trace.Coating{}, bad
+	}
+	c := trace.Coating{Tiers: splitList(tiers), Film: trace.Film{Index: numbers[0], Thickness: numbers[1]}}
+	if len(numbers) == 3 {
+		c.Extinction = numbers[2]
+	}
+	return c, nil
+}
+
+// readBody reads COLOUR:MM or COLOUR/COLOUR:MM.
+func readBody(text string) (*gems.Absorption, error) {
+	colours, thickness, ok := strings.Cut(text, ":")
+	mm, err := strconv.ParseFloat(thickness, 64)
+	if !ok || err != nil {
+		return nil, commandFaultf("--body %q: write a colour and the millimetres it was seen through, such as #a03048:5", text)
+	}
+	first, second, two := strings.Cut(colours, "/")
+	if !two {
+		second = first
+	}
+	o, err1 := gems.ParseColour(first)
+	e, err2 := gems.ParseColour(second)
+	if err := errors.Join(err1, err2); err != nil {
+		return nil, commandFaultf("--body: %w", err)
+	}
+	a, err := gems.ColouredBody(o, e, mm)
+	if err != nil {
+		return nil, commandFaultf("--body: %w", err)
+	}
+	return a, nil
+}
+
+// readNumbers reads so many numbers with commas between.
+func readNumbers(flag, text string, least, most int) ([]float64, error) {
+	var vs []float64
+	for _, part := range splitList(text) {
+		v, err := strconv.ParseFloat(part, 64)
+		if err != nil || v != v {
+			return nil, commandFaultf("%s %q: %q is no number", flag, text, part)
+		}
+		vs = append(vs, v)
+	}
+	if len(vs) < least || len(vs) > most {
+		want := fmt.Sprint(least)
+		if most != least {
+			want = fmt.Sprintf("%d or %d", least, most)
+		}
+		return nil, commandFaultf("%s %q: give %s numbers with commas between", flag, text, want)
+	}
+	return vs, nil
+}
+
+func splitList(text string) []string {
+	parts := strings.Split(text, ",")
+	for i := range parts {
+		parts[i] = strings.TrimSpace(parts[i])
+	}
+	return parts
+}

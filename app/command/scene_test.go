@@ -1,0 +1,121 @@
+package command
+
+import (
+	"math"
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+
+	"pavilight/trace"
+)
+
+// TestScene tries every flag that puts something around the stone: each must change
+// the ledger in the way that it can only change it.
+func TestScene(t *testing.T) {
+	look := func(flags ...string) lookMedium {
+		t.Helper()
+		return decoded[lookResult](t, quick(append([]string{"look", "--in", "air", "--wavelength", "550"}, flags...)...)...).Media[0]
+	}
+	bare := look()
+	within := func(what string, got, want, tolerance float64) {
+		t.Helper()
+		if !(math.Abs(got-want) <= tolerance) {
+			t.Errorf("%s: %v, want %v within %v", what, got, want, tolerance)
+		}
+	}
+	// The same rays in the general tracer; the fast one counts in single precision.
+	within("leaked with paths told", look("--paths").Ledger.Leaked, bare.Ledger.Leaked, 1e-3)
+	if p := look("--paths").PathLengthMM; p == nil || *p < 5 || *p > 100 {
+		t.Errorf("way inside an 8 mm stone: %v", p)
+	}
+	oil := look("--wet", "P1,P2", "--in", "oil")
+	if !(oil.Ledger.Leaked > bare.Ledger.Leaked+0.3) {
+		t.Errorf("an oiled pavilion leaks %v, a clean one %v", oil.Ledger.Leaked, bare.Ledger.Leaked)
+	}
+	within("surface with an oiled pavilion", oil.Ledger.Surface, bare.Ledger.Surface, 1e-3)
+	film := look("--film", "P1,P2=1.48:20000")
+	within("leaked under a clear film, which keeps the critical angle", film.Ledger.Leaked, bare.Ledger.Leaked, 0.02)
+	soil := look("--film", "P1,P2=1.48:20000:0.01")
+	if !(soil.Ledger.Absorbed > 0.1) {
+		t.Errorf("a soiled pavilion absorbs %v", soil.Ledger.Absorbed)
+	}
+	within("leaked over white ground", look("--ground", "1").Ledger.Leaked, 0, 1e-9)
+	dark, bright := look("--setting", "0.2"), look("--setting", "0.9")
+	if !(bright.Ledger.Leaked < dark.Ledger.Leaked*0.6) {
+		t.Errorf("%v are lost in a bright setting, %v in a dark one", bright.Ledger.Leaked, dark.Ledger.Leaked)
+	}
+	if body := look("--body", "#803060:5"); !(body.Ledger.Absorbed > 0.2) {
+		t.Errorf("a deep body colour absorbs %v", body.Ledger.Absorbed)
+	}
+	dish := decoded[lookResult](t, quick("look", "--in", "air", "--dish", "water", "--wavelength", "550")...).Media[1]
+	if dish.Arrangement != "dish" {
+		t.Errorf("the arrangement is %q", dish.Arrangement)
+	}
+	within("mirrored by water", dish.Ledger.Surface, math.Pow(0.334/2.334, 2), 1e-3)
+	near := look("--distance", "300")
+	within("returned to an eye 300 mm away", near.Ledger.Returned, bare.Ledger.Returned, 0.05)
+	if near.Ledger.Returned == bare.Ledger.Returned {
+		t.Error("a near eye sees the very same")
+	}
+	doubly := look("--axis", "90,0")
+	within("returned from both rays", doubly.Ledger.Returned, bare.Ledger.Returned, 0.05)
+	if doubly.Ledger.Returned == bare.Ledger.Returned {
+		t.Error("an optic axis changes nothing at all")
+	}
+	room := look("--light", "room", "--head", "0")
+	if room.Lit.Sum == bare.Lit.Sum || !(room.Lit.Sum > 0) {
+		t.Errorf("in a room %v is seen", room.Lit)
+	}
+	within("the ledger knows no light", room.Ledger.Leaked, bare.Ledger.Leaked, 1e-3)
+}
+
+// TestTrueColour writes pictures and tells measures with what they hold for.
+func TestTrueColour(t *testing.T) {
+	out := t.TempDir()
+	r := decoded[lookResult](t, "look", "--in", "air", "--pixels", "20", "--samples", "8", "--colour", "--light", "lamps",
+		"--distance", "3000", "--out", out)
+	seen := r.Media[0].Seen
+	if seen == nil || seen.Light != "lamps" || seen.DistanceMM != 3000 || seen.WidthMM != r.WidthMM {
+		t.Fatalf("seen: %+v", seen)
+	}
+	for name, e := range map[string]trace.Estimate{"contrast": seen.Contrast, "dark area": seen.DarkArea, "luminance": seen.Luminance} {
+		if !(e.Value > 0 && e.Error > 0) {
+			t.Errorf("%s: %v", name, e)
+		}
+	}
+	if info, err := os.Stat(filepath.Join(out, "colour-air.png")); err != nil || info.Size() < 500 {
+		t.Errorf("the picture: %v", err)
+	}
+}
+
+func TestSceneFaults(t *testing.T) {
+	for _, row := range []struct {
+		flags []string
+		words string
+	}{
+		{[]string{"--light", "moon"}, "even, overcast"},
+		{[]string{"--light", "overcast", "--illuminant", "Z9"}, "--illuminant"},
+		{[]string{"--light", "overcast", "--zenith", "high"}, "--zenith"},
+		{[]string{"--film", "P1"}, "P1,P2=1.48:20000"},
+		{[]string{"--film", "X9=1.4:300"}, "no facet of that tier"},
+		{[]string{"--film", "P1=0.2:300"}, "index 0.2"},
+		{[]string{"--wet", "X9"}, "no facet of that tier"},
+		{[]string{"--wet", "P1", "--dish", "water", "--in", "oil", "--ground", "2"}, "outside 0 to 1"},
+		{[]string{"--setting", "0.5,0.5,0.5"}, "1 or 2 numbers"},
+		{[]string{"--body", "purple:3"}, "#rrggbb"},
+		{[]string{"--body", "#102030"}, "millimetres"},
+		{[]string{"--axis", "10"}, "2 numbers"},
+		{[]string{"--colour", "--wavelength", "500"}, "colour"},
+		{[]string{"--distance", "2"}, "too close"},
+		{[]string{"--dish", "water,"}, "--dish"},
+	} {
+		got := runCommand(quick(append([]string{"look"}, row.flags...)...)...)
+		if got.status != CommandFault || !strings.Contains(got.stderr, row.words) || strings.Contains(got.stderr, "goroutine") {
+			t.Errorf("%v: exit status %d, %s; want words %q", row.flags, got.status, got.stderr, row.words)
+		}
+	}
+	if got := runCommand(quick("look", "--light", "absent.hdr")...); got.status != InputFault {
+		t.Errorf("an absent panorama: exit status %d, %s", got.status, got.stderr)
+	}
+}
