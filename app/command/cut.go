@@ -19,7 +19,6 @@ import (
 	"pavilight/app/sheet"
 	"pavilight/facets"
 	"pavilight/gems"
-	"pavilight/trace"
 )
 
 // cutCommand makes the sheet for the bench.
@@ -103,9 +102,9 @@ func (k *cutCommand) Run(c call) error {
 		one := job
 		one.Plan, one.Material = plan, materials[i]
 		if !k.NoMaps {
-			report := func(r *trace.Result) { bar.show((float64(i) + r.Done) / float64(len(plans))) }
-			if one.Light, err = k.light(c, plan, materials[i], media, report); err != nil {
-				return err
+			report := func(done float64) { bar.show((float64(i) + done) / float64(len(plans))) }
+			if err := sheet.Trace(c, &one, media, report); err != nil {
+				return lightFault(plan, err)
 			}
 		}
 		s, err := newSheet(one)
@@ -303,26 +302,17 @@ func (f *subjectFlags) planOfStone(c call) (*facets.Plan, *gems.Material, error)
 	return plan, s.material, nil
 }
 
-// The light on a sheet: small maps, and a ledger to three decimals.
-const (
-	sheetPixels = 160
-	sheetError  = 0.001
-)
-
-// light traces the small maps.
-func (k *cutCommand) light(c call, plan *facets.Plan, m *gems.Material, media []*gems.Material, report func(*trace.Result)) (*trace.Result, error) {
-	stone, err := plan.Solve()
-	if err != nil {
-		return nil, inputFault(err)
-	}
-	result, err := trace.Run(c, trace.Scene{Stone: stone, Material: m, Surroundings: trace.Around(media...)}, trace.Settings{
-		Head: facets.Angle(k.Head) * facets.Degree, Pixels: sheetPixels, Error: sheetError, Seed: 1,
-	}, report)
+// lightFault says whose fault it is that a plan's light cannot be traced.
+func lightFault(plan *facets.Plan, err error) error {
 	var outside *gems.RangeError
-	if errors.As(err, &outside) {
-		return nil, inputFault(fmt.Errorf("%s: the maps cannot be traced: %w; or leave them out with --no-maps", plan.File, err))
+	var faults facets.Faults
+	switch {
+	case errors.As(err, &outside):
+		return inputFault(fmt.Errorf("%s: the maps cannot be traced: %w; or leave them out with --no-maps", plan.File, err))
+	case errors.As(err, &faults):
+		return inputFault(err)
 	}
-	return result, err
+	return err
 }
 
 // newSheet works a job out; faults are the input's.

@@ -385,9 +385,6 @@ func (l *press) ledger(x, y float64) {
 	l.lines(t, pale(), x, y, l.right()-x, note)
 }
 
-// toleranceAngle is the error of a machine that the sheet reckons with.
-const toleranceAngle = 0.2 * facets.Degree
-
 // tolerance sets the note on what errors cost.
 func (l *press) tolerance() {
 	s := l.sheet
@@ -401,6 +398,9 @@ func (l *press) tolerance() {
 			toleranceAngle.Degrees(), tier, far, far*math.Tan(toleranceAngle.Radians()), facets.VisibleGap))
 	}
 	if w := s.criticalWords(); w != "" && !s.LeaveOut.Angles {
+		words = append(words, w)
+	}
+	if w := s.miscutWords(); w != "" {
 		words = append(words, w)
 	}
 	for _, g := range s.Solution.Gaps {

@@ -27,6 +27,7 @@ type Job struct {
 	Material *gems.Material
 	Machine  Machine
 	Light    *trace.Result // face-up maps and ledger, one column a medium; nil leaves them out
+	Miscuts  []Miscut      // what errors of the machine do to the light; see Trace
 	HeadDeg  float64       // half-angle of the head in Light, degrees
 
 	Paper     Paper

@@ -1,0 +1,116 @@
+package sheet
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"strings"
+
+	"pavilight/facets"
+	"pavilight/gems"
+	"pavilight/trace"
+)
+
+// The light on a sheet: small maps, and a ledger to three decimals.
+const (
+	lightPixels = 160
+	lightError  = 0.001
+)
+
+// toleranceAngle is the error of a machine that the sheet reckons with.
+const toleranceAngle = 0.2 * facets.Degree
+
+// Miscut is what a side that is cut wrong by a machine's error does to the light.
+type Miscut struct {
+	Side   facets.Side
+	By     facets.Angle // added to every angle of the side
+	Return float64      // light return in the first medium
+	Error  float64      // its standard error
+}
+
+// Trace fills in a job's light: the maps of its plan in each medium, and what errors
+// of the machine do to the light return in the first. It calls report, which may be
+// nil, with the share of the work done. Errors are facets.Faults where the plan cannot
+// be solved and *gems.RangeError where an index is not known; after ctx is cancelled,
+// its cause.
+func Trace(ctx context.Context, job *Job, media []*gems.Material, report func(done float64)) error {
+	stone, err := job.Plan.Solve()
+	if err != nil {
+		return err
+	}
+	settings := trace.Settings{Head: facets.Angle(job.HeadDeg) * facets.Degree, Pixels: lightPixels, Error: lightError, Seed: 1}
+	errors := miscutPlans(job.Plan)
+	weight := 1 / (1 + float64(len(errors))/float64(len(media)))
+	tell := func(done float64) {
+		if report != nil {
+			report(done)
+		}
+	}
+	job.Light, err = trace.Run(ctx, trace.Scene{Stone: stone, Material: job.Material, Surroundings: trace.Around(media...)}, settings,
+		func(r *trace.Result) { tell(weight * r.Done) })
+	if err != nil {
+		return err
+	}
+	job.Miscuts = nil
+	for i, m := range errors {
+		stone, err := m.plan.Solve()
+		if err != nil {
+			continue // its corners do not come together at these angles: there is no stone to look at
+		}
+		r, err := trace.Run(ctx, trace.Scene{Stone: stone, Material: job.Material, Surroundings: trace.Around(media[0])}, settings, nil)
+		if err != nil {
+			return err
+		}
+		job.Miscuts = append(job.Miscuts, Miscut{Side: m.side, By: m.by, Return: r.Columns[0].Ledger.Returned, Error: r.Columns[0].StandardError.Returned})
+		tell(weight + (1-weight)*float64(i+1)/float64(len(errors)))
+	}
+	tell(1)
+	return nil
+}
+
+// miscutPlan is a plan with one side's angles changed and its corners kept.
+type miscutPlan struct {
+	side facets.Side
+	by   facets.Angle
+	plan *facets.Plan
+}
+
+func miscutPlans(plan *facets.Plan) []miscutPlan {
+	var all []miscutPlan
+	for _, side := range []facets.Side{facets.Pavilion, facets.Crown} {
+		for _, by := range []facets.Angle{-toleranceAngle, toleranceAngle} {
+			changed := plan.Clone()
+			any := false
+			for i := range changed.Tiers {
+				t := &changed.Tiers[i]
+				if wrong := t.Angle + by; t.Side == side && t.HasAngle && t.Angle > 0 && wrong > 0 && wrong < 90*facets.Degree {
+					t.Angle, any = wrong, true
+				}
+			}
+			if any {
+				all = append(all, miscutPlan{side, by, changed})
+			}
+		}
+	}
+	return all
+}
+
+// miscutWords tells what errors of the machine do to the light return.
+func (s *Sheet) miscutWords() string {
+	if s.Light == nil || len(s.Miscuts) == 0 {
+		return ""
+	}
+	c := &s.Light.Columns[0]
+	worst := c.StandardError.Returned
+	var parts []string
+	for _, m := range s.Miscuts {
+		how := "steeper"
+		if m.By < 0 {
+			how = "flatter"
+		}
+		parts = append(parts, fmt.Sprintf("%.3f with the %v %.1f° %s", m.Return, m.Side, math.Abs(m.By.Degrees()), how))
+		worst = max(worst, m.Error)
+	}
+	return fmt.Sprintf("Light return in %s: %.3f as planned; %s; each ± %.3f.", columnName(c), c.Ledger.Returned,
+		strings.Join(parts, ", "), math.Ceil(worst*1000)/1000)
+}
