@@ -139,55 +139,9 @@ func tierKeys() []string {
 
 func (r *reader) read(blocks []*block) {
 	r.head(blocks)
-	seen := false
-	var last *block
-	var transfer *Transfer
-	for _, b := range blocks[1:] {
-		switch name := strings.Join(b.header, "."); {
-		case name == "tier" && b.list:
-			seen, last = true, b
-		case name == "transfer" && b.list:
-			if transfer != nil {
-				r.fault(b.line, "[[transfer]]", "", "the stone is turned twice in a row",
-					"delete one of the two")
-			}
-			transfer = &Transfer{Line: b.line, block: b}
-			r.known(b.entries, "transfer", []string{"note"})
-			for _, e := range b.entries {
-				if e.key == "note" {
-					transfer.Note = r.str(e)
-				}
-			}
-			last = b
-		case b.header[0] == "tier" && !b.list && last != nil && last.header[0] == "tier" &&
-			len(b.header) == 2:
-			last.subs = append(last.subs, b)
-		case name == "material" || name == "axis" || name == "rough":
-			if seen {
-				r.plan.layout.after = append(r.plan.layout.after, b)
-			} else {
-				r.plan.layout.before = append(r.plan.layout.before, b)
-			}
-			last = b
-		case name == "rough.avoid" && b.list && last != nil && last.header[0] == "rough":
-			last.subs = append(last.subs, b)
-		case name == "tier" || name == "transfer":
-			r.fault(b.line, "["+name+"]", "", "the brackets are single", "write [["+name+"]]")
-		default:
-			r.fault(b.line, "["+name+"]", "", "there is no such table in a plan",
-				"the tables are [[tier]], [[transfer]], [material], [axis] and [rough]")
-		}
-		if b == last && b.header[0] == "tier" && b.list {
-			// Tiers are read when their own tables are complete, below.
-			r.plan.Tiers = append(r.plan.Tiers, Tier{Line: b.line, Transfer: transfer, block: b})
-			transfer = nil
-		}
-	}
-	if transfer != nil {
-		r.fault(transfer.Line, "[[transfer]]", "", "nothing is cut after it",
-			"delete it or add the tiers that follow")
-	}
-	for _, b := range append(slices.Clone(r.plan.layout.before), r.plan.layout.after...) {
+	r.sort(blocks[1:])
+	l := r.plan.layout
+	for _, b := range append(slices.Clone(l.before), l.after...) {
 		for _, sub := range b.subs {
 			b.entries = append(b.entries, entry{key: "avoid", line: sub.line,
 				value: item{kind: unstable.Array, list: []item{{kind: unstable.InlineTable,
@@ -195,11 +149,68 @@ func (r *reader) read(blocks []*block) {
 		}
 		r.headTable(b.header[0], b.line, b.entries)
 	}
-	r.plan.checkTables(r)
+	if _, ok := r.lines["material"]; !ok {
+		r.fault(1, "material", "", "the material is missing",
+			"write material = \"quartz\" or what the stone is made of")
+	}
 	for i := range r.plan.Tiers {
 		r.readTier(&r.plan.Tiers[i])
 	}
 	r.together()
+}
+
+// sort puts the blocks after the head in their places: tiers with the transfer
+// before them, the plan's own tables, and tables within tables.
+func (r *reader) sort(blocks []*block) {
+	l := r.plan.layout
+	var last *block
+	var transfer *Transfer
+	within := func(b *block, name string, depth int) bool {
+		return last != nil && last.header[0] == name && b.header[0] == name && len(b.header) == depth
+	}
+	for _, b := range blocks {
+		name := strings.Join(b.header, ".")
+		switch {
+		case name == "tier" && b.list:
+			r.plan.Tiers = append(r.plan.Tiers, Tier{Line: b.line, Transfer: transfer, block: b})
+			transfer, last = nil, b
+		case name == "transfer" && b.list:
+			if transfer != nil {
+				r.fault(b.line, "[[transfer]]", "", "the stone is turned twice in a row",
+					"delete one of the two")
+			}
+			transfer, last = r.transfer(b), b
+		case !b.list && within(b, "tier", 2), name == "rough.avoid" && b.list && within(b, "rough", 2):
+			last.subs = append(last.subs, b)
+		case name == "material" || name == "axis" || name == "rough":
+			last = b
+			if len(r.plan.Tiers) > 0 {
+				l.after = append(l.after, b)
+			} else {
+				l.before = append(l.before, b)
+			}
+		case name == "tier" || name == "transfer":
+			r.fault(b.line, "["+name+"]", "", "the brackets are single", "write [["+name+"]]")
+		default:
+			r.fault(b.line, "["+name+"]", "", "there is no such table in a plan",
+				"the tables are [[tier]], [[transfer]], [material], [axis] and [rough]")
+		}
+	}
+	if transfer != nil {
+		r.fault(transfer.Line, "[[transfer]]", "", "nothing is cut after it",
+			"delete it or add the tiers that follow")
+	}
+}
+
+func (r *reader) transfer(b *block) *Transfer {
+	x := &Transfer{Line: b.line, block: b}
+	r.known(b.entries, "transfer", []string{"note"})
+	for _, e := range b.entries {
+		if e.key == "note" {
+			x.Note = r.str(e)
+		}
+	}
+	return x
 }
 
 // known reports keys that a table does not have.
@@ -305,14 +316,6 @@ func (r *reader) head(blocks []*block) {
 	if p.Name == "" {
 		base := filepath.Base(p.File)
 		p.Name = strings.TrimSuffix(base, filepath.Ext(base))
-	}
-}
-
-// checkTables reports what the head and the plan's own tables together lack.
-func (p *Plan) checkTables(r *reader) {
-	if _, ok := r.lines["material"]; !ok {
-		r.fault(1, "material", "", "the material is missing",
-			"write material = \"quartz\" or what the stone is made of")
 	}
 }
 
@@ -713,15 +716,9 @@ func (r *reader) mark(it item) Mark {
 
 // checkTier looks at the tier's keys together.
 func (r *reader) checkTier(t *Tier, hasSide, hasIndex bool, indexLine int) {
-	switch {
-	case t.Name == "":
-		r.fault(t.Line, "name", "", "the tier has no name", "write name = \"P1\" or what you call it")
-	case t.Name == AxisName || strings.ContainsAny(t.Name, "@\n\r"):
-		r.fault(t.Line, "name", t.Name, "a tier may not have this name",
-			"leave out @ and do not call it axis")
-	}
+	r.checkName(t)
 	if !hasSide {
-		if !slices.ContainsFunc(t.block.entries, func(e entry) bool { return e.key == "side" }) {
+		if !t.block.has("side") {
 			r.fault(t.Line, "side", "", "the side is missing", "it may be "+strings.Join(sideWords(), ", "))
 		}
 		return
@@ -731,57 +728,92 @@ func (r *reader) checkTier(t *Tier, hasSide, hasIndex bool, indexLine int) {
 			"give one stop rule: "+strings.Join(ruleWords[1:], ", "))
 		return
 	}
-	deg := t.Angle.Degrees()
-	flat := t.Side == Table || t.Stop.Rule == StopCulet || t.HasAngle && deg == 0
-	angleLine := t.block.lineOf("angle")
-	switch {
-	case t.Side == Table && t.HasAngle && deg != 0:
-		r.fault(angleLine, "angle", number(deg), "a table is level",
-			"leave the angle out, or put the tier on the crown side")
-	case t.Side == Girdle && t.HasAngle && deg != 90:
-		r.fault(angleLine, "angle", number(deg), "a girdle facet stands upright",
-			"leave the angle out, or put the tier on the crown or pavilion side")
-	case t.Side == Crown && t.HasAngle && deg == 0:
-		r.fault(angleLine, "angle", "0", "a level facet on top is the table", "write side = \"table\"")
-	case (t.Side == Crown || t.Side == Pavilion) && t.HasAngle && deg == 90:
-		r.fault(angleLine, "angle", "90", "an upright facet belongs to the girdle", "write side = \"girdle\"")
-	case t.Stop.Rule == StopTable && t.Side != Table:
-		r.fault(t.Stop.Line, "table", "", "the rule is for the table only",
-			"write side = \"table\" or use another rule")
-	case t.Stop.Rule == StopCulet && (t.Side != Pavilion || t.HasAngle && deg != 0):
-		r.fault(t.Stop.Line, "culet", "", "the rule is for a level flat under the pavilion",
-			"write side = \"pavilion\" and leave the angle out")
-	case t.Side == Girdle && (t.Stop.Rule == StopCentre || t.Stop.Rule == StopLevel ||
-		t.Stop.Rule == StopGirdle || t.Stop.Rule == StopEdge):
-		r.fault(t.Stop.Line, t.Stop.Rule.String(), "", "an upright facet cannot stop by it",
-			"use distance or meet")
-	}
+	r.checkAngle(t)
+	r.checkRule(t)
 	switch {
 	case t.Side == Table || t.Stop.Rule == StopCulet:
 		t.Angle, t.HasAngle = 0, true
 	case t.Side == Girdle:
 		t.Angle, t.HasAngle = 90*Degree, true
 	}
+	r.checkUnknowns(t, hasIndex, indexLine)
+}
+
+func (r *reader) checkName(t *Tier) {
+	switch {
+	case t.Name == "":
+		r.fault(t.Line, "name", "", "the tier has no name", "write name = \"P1\" or what you call it")
+	case t.Name == AxisName || strings.ContainsAny(t.Name, "@\n\r"):
+		r.fault(t.Line, "name", t.Name, "a tier may not have this name",
+			"leave out @ and do not call it axis")
+	}
+}
+
+// checkAngle compares an angle that was given with the tier's side.
+func (r *reader) checkAngle(t *Tier) {
+	if !t.HasAngle {
+		return
+	}
+	deg := t.Angle.Degrees()
+	why, remedy := "", ""
+	switch {
+	case t.Side == Table && deg != 0:
+		why, remedy = "a table is level", "leave the angle out, or put the tier on the crown side"
+	case t.Side == Girdle && deg != 90:
+		why, remedy = "a girdle facet stands upright",
+			"leave the angle out, or put the tier on the crown or pavilion side"
+	case t.Side == Crown && deg == 0:
+		why, remedy = "a level facet on top is the table", "write side = \"table\""
+	case t.Side != Girdle && deg == 90:
+		why, remedy = "an upright facet belongs to the girdle", "write side = \"girdle\""
+	default:
+		return
+	}
+	r.fault(t.block.lineOf("angle"), "angle", number(deg), why, remedy)
+}
+
+// checkRule compares the stop rule with the tier's side.
+func (r *reader) checkRule(t *Tier) {
+	why, remedy := "", ""
+	switch rule := t.Stop.Rule; {
+	case rule == StopTable && t.Side != Table:
+		why, remedy = "the rule is for the table only", "write side = \"table\" or use another rule"
+	case rule == StopCulet && (t.Side != Pavilion || t.HasAngle && t.Angle != 0):
+		why, remedy = "the rule is for a level flat under the pavilion",
+			"write side = \"pavilion\" and leave the angle out"
+	case t.Side == Girdle && rule != StopDistance && rule != StopMeet && rule != StopTable && rule != StopCulet:
+		why, remedy = "an upright facet cannot stop by it", "use distance or meet"
+	default:
+		return
+	}
+	r.fault(t.Stop.Line, t.Stop.Rule.String(), "", why, remedy)
+}
+
+// checkUnknowns looks whether the corners give what the tier leaves open, and
+// whether the corners are enough in themselves.
+func (r *reader) checkUnknowns(t *Tier, hasIndex bool, indexLine int) {
 	corners := len(t.Stop.Corners)
+	flat := t.HasAngle && t.Angle == 0
 	if !t.HasAngle && corners < 2 {
 		r.fault(t.Line, "angle", "", "the angle is missing and cannot be found",
 			"give it, or name two corners in meet")
 	}
-	if !flat && !hasIndex && !(t.Stop.Rule == StopMeet && corners >= 3 && (!t.HasAngle ||
-		t.Side == Girdle)) && !(t.Side == Girdle && corners >= 2) {
+	enough := !t.HasAngle && corners >= 3 || t.Side == Girdle && corners >= 2
+	if !flat && !hasIndex && !enough {
 		r.fault(indexLine, "index", "", "the index is missing and cannot be found",
 			"give it, or name three corners in meet and leave the angle out")
-	}
-	for _, c := range t.Stop.Corners {
-		if len(c) < 2 || len(c) < 3 && !slices.ContainsFunc(c,
-			func(m Mark) bool { return m.Tier == AxisName || !m.HasIndex }) {
-			r.fault(t.Stop.Line, "meet", markNames(c), "a corner needs three planes",
-				"name all three; the axis counts for two")
-		}
 	}
 	if flat && t.Side != Crown && (len(t.Index) > 1 || t.Fold > 1 || t.Mirror) {
 		r.fault(indexLine, "index", "", "a level flat is one facet wherever the index stands",
 			"give one index or none")
+	}
+	for _, c := range t.Stop.Corners {
+		// The axis counts for two planes; a name alone may stand for two facets.
+		more := slices.ContainsFunc(c, func(m Mark) bool { return m.Tier == AxisName || !m.HasIndex })
+		if len(c) < 2 || len(c) < 3 && !more {
+			r.fault(t.Stop.Line, "meet", markNames(c), "a corner needs three planes",
+				"name all three; the axis counts for two")
+		}
 	}
 }
 

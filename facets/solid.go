@@ -229,66 +229,34 @@ func (s *solid) walk() touch {
 	anyOn, anyBelow, allOn := false, false, false
 	for i := range s.faces {
 		ring := s.faces[i].ring
-		n := len(ring)
-		above, on, start := 0, 0, -1
-		for j, c := range ring {
-			switch s.class[c] {
-			case isAbove:
-				above++
-				if s.class[ring[(j+n-1)%n]] != isAbove {
-					if start >= 0 {
-						return unresolved // two runs: at this tolerance the ring is not convex
-					}
-					start = j
-				}
-			case isOn:
-				on++
-			}
-		}
-		anyOn = anyOn || on > 0
-		anyBelow = anyBelow || above+on < n
-		allOn = allOn || n > 0 && on == n
+		run := s.runAbove(ring)
+		below := len(ring) - run.above - run.on
+		anyOn = anyOn || run.on > 0
+		anyBelow = anyBelow || below > 0
+		allOn = allOn || run.on > 0 && run.on == len(ring)
 		switch {
-		case above == 0:
-		case above+on == n:
+		case run.above == 0:
+		case run.count > 1:
+			return unresolved // at this tolerance the ring is not convex
+		case below == 0:
 			s.changes = append(s.changes, change{int32(i), nil})
-			for j, a := range ring {
-				if b := ring[(j+1)%n]; s.class[a] == isOn && s.class[b] == isOn {
-					level = append(level, [2]int32{a, b})
-				}
-			}
-		default:
-			kept := make([]int32, 0, n-above+2)
-			for j := range n - above {
-				kept = append(kept, ring[(start+above+j)%n])
-			}
-			from, to := kept[len(kept)-1], kept[0]
-			if s.class[from] == isBelow {
-				from = s.cross(from, ring[start], int32(i))
-				kept = append(kept, from)
-			}
-			if s.class[to] == isBelow {
-				to = s.cross(to, ring[(start+above-1)%n], int32(i))
-				kept = append(kept, to)
-			}
-			if from == to || len(kept) < 3 {
-				return unresolved
-			}
-			s.ring = append(s.ring, capEdge{from: to, to: from, beyond: int32(i)})
-			s.changes = append(s.changes, change{int32(i), kept})
+			level = s.levelEdges(level, ring)
+		case !s.shorten(int32(i), run):
+			return unresolved
 		}
 	}
 	switch {
 	case !anyBelow:
 		return swallows
-	case len(s.changes) == 0 && allOn:
-		return coincides
-	case len(s.changes) == 0 && anyOn:
-		return grazes
-	case len(s.changes) == 0:
-		return misses
-	case allOn:
+	case len(s.changes) > 0 && allOn:
 		return unresolved // a flat lies in the plane and yet a corner stands above it
+	case len(s.changes) > 0:
+	case allOn:
+		return coincides
+	case anyOn:
+		return grazes
+	default:
+		return misses
 	}
 	for _, e := range level {
 		if beyond, stays := s.across(e); stays {
@@ -296,6 +264,62 @@ func (s *solid) walk() touch {
 		}
 	}
 	return cuts
+}
+
+// aboveRun counts the corners of a ring by class and finds the run above.
+type aboveRun struct {
+	above, on int
+	start     int // place of the run's first corner
+	count     int // of runs
+}
+
+func (s *solid) runAbove(ring []int32) aboveRun {
+	var r aboveRun
+	for j, c := range ring {
+		switch s.class[c] {
+		case isAbove:
+			r.above++
+			if s.class[ring[(j+len(ring)-1)%len(ring)]] != isAbove {
+				r.start = j
+				r.count++
+			}
+		case isOn:
+			r.on++
+		}
+	}
+	return r
+}
+
+// levelEdges appends the edges of a ring that lie in the plane.
+func (s *solid) levelEdges(list [][2]int32, ring []int32) [][2]int32 {
+	for j, a := range ring {
+		if b := ring[(j+1)%len(ring)]; s.class[a] == isOn && s.class[b] == isOn {
+			list = append(list, [2]int32{a, b})
+		}
+	}
+	return list
+}
+
+// shorten plans the ring of a face that loses a run of corners.
+func (s *solid) shorten(face int32, run aboveRun) bool {
+	ring := s.faces[face].ring
+	n := len(ring)
+	kept := make([]int32, 0, n-run.above+2)
+	for j := range n - run.above {
+		kept = append(kept, ring[(run.start+run.above+j)%n])
+	}
+	from, to := kept[len(kept)-1], kept[0]
+	if s.class[from] == isBelow {
+		from = s.cross(from, ring[run.start], face)
+		kept = append(kept, from)
+	}
+	if s.class[to] == isBelow {
+		to = s.cross(to, ring[(run.start+run.above-1)%n], face)
+		kept = append(kept, to)
+	}
+	s.ring = append(s.ring, capEdge{from: to, to: from, beyond: face})
+	s.changes = append(s.changes, change{face, kept})
+	return from != to && len(kept) >= 3
 }
 
 // cross returns the new corner on the edge between a corner below and one

@@ -130,66 +130,51 @@ func splitBlocks(data []byte, file string) ([]*block, error) {
 	}
 	var whole map[string]any
 	if err := toml.Unmarshal(data, &whole); err != nil {
-		f := &Fault{File: file, Why: "this is not TOML",
-			Remedy: "see the sample plans for how one is written"}
-		var de *toml.DecodeError
-		if errors.As(err, &de) {
-			f.Line, _ = de.Position()
-			f.Got = lineOf(data, f.Line)
-			f.Field = "line"
-			f.Why = "this is not TOML: " + strings.TrimPrefix(de.Error(), "toml: ")
-			f.Remedy = "correct this line"
-		}
-		return nil, f
+		return nil, notTOML(data, file, err)
 	}
 	p := unstable.Parser{}
 	p.Reset(data)
 	blocks := []*block{{line: 1}}
 	starts := []int{0} // of each block's header
 	lines := newLines(data)
-	end := 0 // of the last expression
 	for p.NextExpression() {
 		e := p.Expression()
 		switch e.Kind {
 		case unstable.KeyValue:
 			b := blocks[len(blocks)-1]
-			from := int(e.Raw.Offset)
-			end = from + int(e.Raw.Length)
-			en := readEntry(&p, e, lines)
-			en.lineFrom, en.lineTo = lines.start(from), lines.end(end)
-			en.to = end
-			keyEnd := 0
-			n := 0
-			for it := e.Key(); it.Next(); n++ {
-				keyEnd = int(it.Node().Raw.Offset + it.Node().Raw.Length)
-			}
-			b.odd = b.odd || n > 1
-			eq := keyEnd + bytes.IndexByte(data[keyEnd:], '=') + 1
-			for eq < end && (data[eq] == ' ' || data[eq] == '\t') {
-				eq++
-			}
-			en.from = eq
-			en.value.written = string(data[eq:end])
+			en, dotted := readEntry(&p, e, lines)
+			b.odd = b.odd || dotted
 			b.entries = append(b.entries, en)
 		case unstable.Table, unstable.ArrayTable:
-			var name []string
-			from := -1
-			for it := e.Key(); it.Next(); {
-				name = append(name, string(it.Node().Data))
-				if from < 0 {
-					from = int(it.Node().Raw.Offset)
-				}
-				end = int(it.Node().Raw.Offset + it.Node().Raw.Length)
-			}
+			name, from, _ := keyOf(e)
 			blocks = append(blocks, &block{header: name, list: e.Kind == unstable.ArrayTable,
 				line: lines.number(from)})
 			starts = append(starts, lines.start(from))
 		}
 	}
 	if err := p.Error(); err != nil {
-		return nil, &Fault{File: file, Why: "this is not TOML: " + err.Error()}
+		return nil, notTOML(data, file, err)
 	}
-	// The comments right above a header belong to its block.
+	shareText(data, lines, blocks, starts)
+	return blocks, nil
+}
+
+// notTOML turns the decoder's error into a fault.
+func notTOML(data []byte, file string, err error) *Fault {
+	f := &Fault{File: file, Why: "this is not TOML: " + strings.TrimPrefix(err.Error(), "toml: "),
+		Remedy: "see the sample plans for how one is written"}
+	var de *toml.DecodeError
+	if errors.As(err, &de) {
+		f.Line, _ = de.Position()
+		f.Field, f.Got = "line", lineOf(data, f.Line)
+		f.Remedy = "correct this line"
+	}
+	return f
+}
+
+// shareText gives each block its part of the text. The comments right above a
+// header belong to its block.
+func shareText(data []byte, lines *lines, blocks []*block, starts []int) {
 	tops := slices.Clone(starts)
 	for i := 1; i < len(blocks); i++ {
 		floor := starts[i-1]
@@ -218,21 +203,37 @@ func splitBlocks(data []byte, file string) ([]*block, error) {
 			e.lineFrom, e.lineTo = e.lineFrom-tops[i], e.lineTo-tops[i]
 		}
 	}
-	return blocks, nil
 }
 
-// readEntry copies a key and its value out of the parser.
-func readEntry(p *unstable.Parser, e *unstable.Node, lines *lines) entry {
-	var key []string
-	at := 0
+// keyOf returns the parts of an expression's key and where it stands.
+func keyOf(e *unstable.Node) (parts []string, from, to int) {
 	for it := e.Key(); it.Next(); {
-		key = append(key, string(it.Node().Data))
-		if len(key) == 1 {
-			at = int(it.Node().Raw.Offset)
+		if len(parts) == 0 {
+			from = int(it.Node().Raw.Offset)
 		}
+		parts = append(parts, string(it.Node().Data))
+		to = int(it.Node().Raw.Offset + it.Node().Raw.Length)
 	}
+	return parts, from, to
+}
+
+// readEntry copies a key and its value out of the parser, and tells whether
+// the key is dotted.
+func readEntry(p *unstable.Parser, e *unstable.Node, lines *lines) (entry, bool) {
+	parts, at, keyEnd := keyOf(e)
 	line := lines.number(at)
-	return entry{key: strings.Join(key, "."), line: line, value: readItem(p, e.Value(), line, lines)}
+	en := entry{key: strings.Join(parts, "."), line: line, value: readItem(p, e.Value(), line, lines)}
+	if e.Raw.Length > 0 { // keys inside of inline tables have no place of their own
+		data := p.Data()
+		en.to = int(e.Raw.Offset + e.Raw.Length)
+		en.from = keyEnd + bytes.IndexByte(data[keyEnd:], '=') + 1
+		for en.from < en.to && (data[en.from] == ' ' || data[en.from] == '\t') {
+			en.from++
+		}
+		en.lineFrom, en.lineTo = lines.start(at), lines.end(en.to)
+		en.value.written = string(data[en.from:en.to])
+	}
+	return en, len(parts) > 1
 }
 
 func readItem(p *unstable.Parser, n *unstable.Node, line int, lines *lines) item {
@@ -248,7 +249,8 @@ func readItem(p *unstable.Parser, n *unstable.Node, line int, lines *lines) item
 		it.written = "[" + joinWritten(it.list) + "]"
 	case unstable.InlineTable:
 		for c := n.Children(); c.Next(); {
-			it.table = append(it.table, readEntry(p, c.Node(), lines))
+			en, _ := readEntry(p, c.Node(), lines)
+			it.table = append(it.table, en)
 		}
 		it.written = "{...}"
 	default:
