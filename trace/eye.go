@@ -69,7 +69,8 @@ func LookAt(pictures []*Picture, inside []bool, distance float64) (*Seen, error)
 	return nil, errFewRays
 }
 
-var errFewRays = errors.New("too few rays to measure the picture as an eye sees it; trace more samples a pixel, or fewer pixels")
+var errFewRays = errors.New("too few rays to measure the picture as an eye sees it; " +
+	"trace more samples a pixel, or fewer pixels")
 
 // mostTogether returns the largest power of two, up to 64, that is no more than n.
 func mostTogether(n int) int { return min(1<<(bits.Len(uint(n))-1), 64) }
@@ -77,15 +78,18 @@ func mostTogether(n int) int { return min(1<<(bits.Len(uint(n))-1), 64) }
 // checkPictures checks that pictures are of one size and fine enough.
 func checkPictures(pictures []*Picture, inside []bool, distance float64) error {
 	if !(distance > 0) || math.IsInf(distance, 0) {
-		return fmt.Errorf("viewing distance %g mm: not possible; give the millimetres from the eye to the stone", distance)
+		return fmt.Errorf("viewing distance %g mm: not possible; give the millimetres from the eye to the stone",
+			distance)
 	}
 	if len(pictures) < leastPictures {
-		return fmt.Errorf("%d pictures: at least %d independent ones are needed for an error", len(pictures), leastPictures)
+		return fmt.Errorf("%d pictures: at least %d independent ones are needed for an error",
+			len(pictures), leastPictures)
 	}
 	first := pictures[0]
 	cells := first.Pixels * first.Pixels
 	for _, p := range pictures {
-		if p.Pixels != first.Pixels || p.Pitch != first.Pitch || len(p.Sum) != cells || len(p.Rays) != cells || len(inside) != cells {
+		alike := p.Pixels == first.Pixels && p.Pitch == first.Pitch
+		if !alike || len(p.Sum) != cells || len(p.Rays) != cells || len(inside) != cells {
 			return errors.New("pictures of different sizes cannot be measured together")
 		}
 	}

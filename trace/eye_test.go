@@ -26,10 +26,10 @@ func fineInside() []bool {
 
 // photograph makes n independent pictures of what scene shows at a pixel of the stone,
 // one ray a pixel, each with its own noise, which noise draws.
-func photograph(n int, pitch float64, scene func(x, y int) [3]float64, noise func(true [3]float64) [3]float64) []*Picture {
+func photograph(n int, pitch float64, scene func(x, y int) [3]float64, noise func([3]float64) [3]float64) []*Picture {
 	pictures := make([]*Picture, n)
 	for g := range pictures {
-		p := &Picture{Pixels: fineView, Pitch: pitch, Sum: make([][3]float64, fineView*fineView), Rays: make([]int32, fineView*fineView)}
+		p := blank(fineView, pitch)
 		for i, in := range fineInside() {
 			if in {
 				p.Sum[i] = noise(scene(i%fineView, i/fineView))
@@ -39,6 +39,16 @@ func photograph(n int, pitch float64, scene func(x, y int) [3]float64, noise fun
 		pictures[g] = p
 	}
 	return pictures
+}
+
+// blank returns a picture without rays.
+func blank(edge int, pitch float64) *Picture {
+	return &Picture{Pixels: edge, Pitch: pitch, Sum: make([][3]float64, edge*edge), Rays: make([]int32, edge*edge)}
+}
+
+// uniform shows the same grey everywhere.
+func uniform(y float64) func(x, _ int) [3]float64 {
+	return func(_, _ int) [3]float64 { return grey(y) }
 }
 
 func exact(v [3]float64) [3]float64 { return v }
@@ -108,9 +118,10 @@ func TestAveragingBlursAsADiscDoes(t *testing.T) {
 			near(t, "mean", sum/(60*30), 0, 1e-9, "three whole periods or more")
 		}
 	}
-	flat := mustLookAt(t, photograph(leastPictures, 0.02, func(_, _ int) [3]float64 { return grey(0.7) }, exact), reading)
+	flat := mustLookAt(t, photograph(leastPictures, 0.02, uniform(0.7), exact), reading)
 	for i := range flat.places {
-		near(t, "a flat stone", flat.averaged[0][i][1], 0.7, 1e-14, "the mean is over the stone alone, up to its edge")
+		near(t, "a flat stone", flat.averaged[0][i][1], 0.7, 1e-14,
+			"the mean is over the stone alone, up to its edge")
 	}
 }
 
@@ -124,7 +135,8 @@ func TestDarkArea(t *testing.T) {
 	}
 	pitch := eyeDisc(reading) / 2
 	e := mustLookAt(t, photograph(leastPictures, pitch, bands, exact), reading).DarkArea()
-	near(t, "without noise", e.Value, 23.0/60, 1e-12, "24 of 60 columns, of which the one at the edge is lit by its neighbour")
+	near(t, "without noise", e.Value, 23.0/60, 1e-12,
+		"24 of 60 columns, of which the one at the edge is lit by its neighbour")
 	near(t, "without noise", e.Error, 0, 1e-15, "no noise, no error")
 
 	// Where the light grows slowly, noise makes places seem dark that are not, and more than
@@ -133,13 +145,15 @@ func TestDarkArea(t *testing.T) {
 	e = mustLookAt(t, photograph(leastPictures, pitch, growing, exact), reading).DarkArea()
 	near(t, "without noise", e.Value, math.Pow(0.05, 0.25), 1.0/60, "2 x⁴ < 0.1, to a column")
 	rng := rand.New(rand.NewPCG(9, 9))
-	within(t, "with noise", mustLookAt(t, photograph(16, pitch, growing, grainy(rng)), reading).DarkArea(), e.Value, "the same scene without noise")
+	within(t, "with noise", mustLookAt(t, photograph(16, pitch, growing, grainy(rng)), reading).DarkArea(), e.Value,
+		"the same scene without noise")
 }
 
 // TestContrast measures gratings, through noise that alone would show more contrast than
 // they do.
 func TestContrast(t *testing.T) {
-	const source = "Peli, J. Opt. Soc. Am. A 7 (1990) 2032: the RMS contrast of a sine grating is its Michelson contrast over √2"
+	const source = "Peli, J. Opt. Soc. Am. A 7 (1990) 2032: the RMS contrast of a sine " +
+		"grating is its Michelson contrast over √2"
 	pitch := eyeDisc(reading) / 2
 	for _, michelson := range []float64{0.1, 0.5, 0.9} {
 		const period, blur = 30, 0.9945 // 2 J1(z)/z for 2 pixels across and 30 a period
@@ -164,9 +178,9 @@ func TestContrast(t *testing.T) {
 			t.Errorf("the noise is too faint to tell: contrast %v without care, %v true", naive, e.Value)
 		}
 	}
-	even := mustLookAt(t, photograph(leastPictures, pitch, func(_, _ int) [3]float64 { return grey(0.5) }, exact), reading)
+	even := mustLookAt(t, photograph(leastPictures, pitch, uniform(0.5), exact), reading)
 	near(t, "an even stone", even.Contrast().Value, 0, 1e-7, "no contrast; the square is good to 1e-15")
-	black := mustLookAt(t, photograph(leastPictures, pitch, func(_, _ int) [3]float64 { return grey(0) }, exact), reading)
+	black := mustLookAt(t, photograph(leastPictures, pitch, uniform(0), exact), reading)
 	near(t, "a black stone", black.Contrast().Value, 0, 0, "no contrast")
 	near(t, "a black stone", black.Fire().Value, 0, 0, "no fire")
 	near(t, "a black stone", black.DarkArea().Value, 1, 0, "all dark")
@@ -174,7 +188,8 @@ func TestContrast(t *testing.T) {
 
 // TestFire has halves of two primaries whose distance in u', v' is known.
 func TestFire(t *testing.T) {
-	const source = "chromaticities of IEC 61966-2-1 in u', v': red 0.4507, 0.5229, green 0.1250, 0.5625; each by its own weight, the mean between by D = X + 15Y + 3Z"
+	const source = "chromaticities of IEC 61966-2-1 in u', v': red 0.4507, 0.5229, green " +
+		"0.1250, 0.5625; each by its own weight, the mean between by D = X + 15Y + 3Z"
 	red, green := xyzFromSRGB.Mul3x1(mgl64.Vec3{1, 0, 0}), xyzFromSRGB.Mul3x1(mgl64.Vec3{0, 1, 0})
 	scene := func(x, _ int) [3]float64 {
 		if x < fineView/2 {
@@ -207,11 +222,20 @@ func TestFire(t *testing.T) {
 	}), reading)
 	within(t, "with noise of colour", noisy.Fire(), e.Value, "the same scene without noise")
 
-	grey := mustLookAt(t, photograph(leastPictures, pitch, func(x, _ int) [3]float64 { return grey(0.1 + float64(x)) }, exact), reading)
-	near(t, "a grey stone", grey.Fire().Value, 0, 1e-7, "no colour, no fire; the square is good to 1e-15")
+	greys := func(x, _ int) [3]float64 { return grey(0.1 + float64(x)) }
+	colourless := mustLookAt(t, photograph(leastPictures, pitch, greys, exact), reading)
+	near(t, "a grey stone", colourless.Fire().Value, 0, 1e-7, "no colour, no fire; the square is good to 1e-15")
 }
 
 func TestSparkle(t *testing.T) {
+	sparkle := func(first, second []*Picture) Estimate {
+		t.Helper()
+		e, err := Sparkle(first, second, fineInside(), fineInside(), reading)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return e
+	}
 	pitch := eyeDisc(reading) / 2
 	first := func(x, y int) [3]float64 { return grey(1 + 0.2*math.Sin(float64(y)/9)) }
 	second := func(x, y int) [3]float64 {
@@ -222,23 +246,14 @@ func TestSparkle(t *testing.T) {
 	}
 	// A quarter changes by 0.4: √(0.4²/4); the edge between is blurred over two columns.
 	const want, edge = 0.2, 0.005
-	exactly, err := Sparkle(photograph(4, pitch, first, exact), photograph(4, pitch, second, exact), fineInside(), fineInside(), reading)
-	if err != nil {
-		t.Fatal(err)
-	}
+	exactly := sparkle(photograph(4, pitch, first, exact), photograph(4, pitch, second, exact))
 	near(t, "without noise", exactly.Value, want, edge, "arithmetic")
 
 	rng := rand.New(rand.NewPCG(8, 8))
-	noisy, err := Sparkle(photograph(16, pitch, first, grainy(rng)), photograph(16, pitch, second, grainy(rng)), fineInside(), fineInside(), reading)
-	if err != nil {
-		t.Fatal(err)
-	}
+	noisy := sparkle(photograph(16, pitch, first, grainy(rng)), photograph(16, pitch, second, grainy(rng)))
 	within(t, "with noise", noisy, exactly.Value, "the same scenes without noise")
 
-	still, err := Sparkle(photograph(16, pitch, first, grainy(rng)), photograph(16, pitch, first, grainy(rng)), fineInside(), fineInside(), reading)
-	if err != nil {
-		t.Fatal(err)
-	}
+	still := sparkle(photograph(16, pitch, first, grainy(rng)), photograph(16, pitch, first, grainy(rng)))
 	if still.Value > 5.4*still.Error {
 		t.Errorf("a stone that does not rock sparkles by %v", still)
 	}
@@ -248,14 +263,12 @@ func TestSparkle(t *testing.T) {
 		carry := func(i int) int { return int(math.Floor((float64(i)+0.5-fineView/2)*0.9 + fineView/2)) }
 		return first(carry(x), carry(y))
 	}
-	smaller, err := Sparkle(photograph(4, pitch, first, exact), photograph(4, 0.9*pitch, zoomed, exact), fineInside(), fineInside(), reading)
-	if err != nil {
-		t.Fatal(err)
-	}
+	smaller := sparkle(photograph(4, pitch, first, exact), photograph(4, 0.9*pitch, zoomed, exact))
 	// Half a pixel of a gradient of 0.2/9 at most, from the one and from the other.
 	near(t, "the same stone in smaller pixels", smaller.Value, 0, 0.2/9, "no change")
 
-	if _, err := Sparkle(photograph(8, pitch, first, exact), photograph(4, pitch, second, exact), fineInside(), fineInside(), reading); err == nil {
+	eight, four := photograph(8, pitch, first, exact), photograph(4, pitch, second, exact)
+	if _, err := Sparkle(eight, four, fineInside(), fineInside(), reading); err == nil {
 		t.Error("unequal numbers of pictures are taken")
 	}
 }
@@ -288,7 +301,7 @@ func TestSparseRaysAreJoined(t *testing.T) {
 }
 
 func TestPicturesThatCannotBeMeasured(t *testing.T) {
-	scene := func(_, _ int) [3]float64 { return grey(1) }
+	scene := uniform(1)
 	fine, coarse := eyeDisc(reading)/2, eyeDisc(reading)/1.5
 	other := photograph(4, fine, scene, exact)
 	other[2].Pixels--
@@ -352,7 +365,8 @@ func TestHalves(t *testing.T) {
 	}
 	scatter := math.Sqrt(squares - sum*sum)
 	if z := (sum - mean*mean) / (scatter / math.Sqrt(repeats)); math.Abs(z) > 3.3 {
-		t.Errorf("mean of the estimates %v, want %v, z = %.1f; without care it would be %v", sum, mean*mean, z, mean*mean+1.0/n)
+		t.Errorf("mean of the estimates %v, want %v, z = %.1f; without care it would be %v",
+			sum, mean*mean, z, mean*mean+1.0/n)
 	}
 	if errors < 0.9*scatter || errors > 1.5*scatter {
 		t.Errorf("mean error %v, the estimates scatter by %v", errors, scatter)
@@ -369,7 +383,7 @@ func BenchmarkMeasures(b *testing.B) {
 	}
 	pictures := make([]*Picture, 16)
 	for g := range pictures {
-		p := &Picture{Pixels: edge, Pitch: 8.0 / edge, Sum: make([][3]float64, edge*edge), Rays: make([]int32, edge*edge)}
+		p := blank(edge, 8.0/edge)
 		for i := range p.Sum {
 			p.Sum[i], p.Rays[i] = [3]float64{rng.Float64(), rng.Float64(), rng.Float64()}, 1
 		}

@@ -55,7 +55,7 @@ func ReadPanorama(r io.Reader, file string, zenith ...mgl64.Vec3) (*Light, error
 	}
 	p.received = p.receive()
 	p.luminances = primaryLuminances(&d65)
-	l, err := newLight(file, "the user's panorama; its colours as smooth spectra in front of D65", "D65", p)
+	l, err := newLight(file, "the user's panorama; its colours as smooth spectra", "D65", p)
 	if err != nil {
 		return nil, fmt.Errorf("%s: the picture is black above the plane of the stone's picture; "+
 			"use another, or turn its zenith", file)
@@ -191,7 +191,8 @@ func readHeader(r *bufio.Reader) (wide, high int, err error) {
 		}
 		if number == 1 {
 			if line != "#?RADIANCE" && line != "#?RGBE" {
-				return 0, 0, errors.New(`line 1: this is no Radiance picture, which begins with "#?RADIANCE"; use a .hdr panorama`)
+				return 0, 0, errors.New(`line 1: this is no Radiance picture, which begins with "#?RADIANCE"; ` +
+					"use a .hdr panorama")
 			}
 			continue
 		}
@@ -208,7 +209,8 @@ func readHeader(r *bufio.Reader) (wide, high int, err error) {
 	}
 	words := strings.Fields(line)
 	if len(words) != 4 || words[0] != "-Y" || words[2] != "+X" {
-		return 0, 0, fmt.Errorf("size %q: not of the form \"-Y height +X width\"; store the picture upright and unmirrored", clip(line))
+		return 0, 0, fmt.Errorf("size %q: not of the form \"-Y height +X width\"; "+
+			"store the picture upright and unmirrored", clip(line))
 	}
 	high, errHigh := strconv.Atoi(words[1])
 	wide, errWide := strconv.Atoi(words[3])
@@ -216,7 +218,8 @@ func readHeader(r *bufio.Reader) (wide, high int, err error) {
 	case errHigh != nil || errWide != nil || wide < 2 || high < 1:
 		return 0, 0, fmt.Errorf("size %q: not two whole numbers over 0", clip(line))
 	case wide > mostWide || high > mostWide:
-		return 0, 0, fmt.Errorf("size %d × %d: over %d × %d; scale the picture down", wide, high, mostWide, mostWide/2)
+		return 0, 0, fmt.Errorf("size %d × %d: over %d × %d; scale the picture down",
+			wide, high, mostWide, mostWide/2)
 	case wide != 2*high:
 		return 0, 0, fmt.Errorf("size %d × %d: a panorama of the whole sphere is twice as wide as high; "+
 			"use an equirectangular picture", wide, high)
@@ -311,7 +314,8 @@ func readRow(r *bufio.Reader, row []byte) error {
 		return readOldRow(r, row, first)
 	}
 	if stated := int(first[2])<<8 | int(first[3]); stated != wide {
-		return fmt.Errorf("the row says it is %d pixels wide, the header %d; the file is damaged, store it anew", stated, wide)
+		return fmt.Errorf("the row says it is %d pixels wide, the header %d; "+
+			"the file is damaged, store it anew", stated, wide)
 	}
 	// The four parts of all pixels follow one another, each as runs and as plain stretches.
 	for part := range 4 {
@@ -326,7 +330,7 @@ func readRow(r *bufio.Reader, row []byte) error {
 				n -= 128
 			}
 			if n == 0 || x+n > wide {
-				return fmt.Errorf("pixel %d: a run of %d pixels does not fit; the file is damaged, store it anew", x+1, n)
+				return badRun(x, n)
 			}
 			var b byte
 			for i := range n {
@@ -343,6 +347,11 @@ func readRow(r *bufio.Reader, row []byte) error {
 	return nil
 }
 
+// badRun is the error of a run of n pixels from pixel x on that is empty or too long.
+func badRun(x, n int) error {
+	return fmt.Errorf("pixel %d: a run of %d pixels does not fit; the file is damaged, store it anew", x+1, n)
+}
+
 // readOldRow reads a row without runs, or with those of the format's first version: a
 // pixel with mantissas of 1, which no other pixel has, repeats the one before it as
 // often as its exponent says; several in turn are the digits of one number, base 256,
@@ -354,7 +363,7 @@ func readOldRow(r *bufio.Reader, row []byte, first [4]byte) error {
 		if pixel[0] == 1 && pixel[1] == 1 && pixel[2] == 1 {
 			n := int(pixel[3]) << shift
 			if x == 0 || x+n > wide {
-				return fmt.Errorf("pixel %d: a run of %d pixels does not fit; the file is damaged, store it anew", x+1, n)
+				return badRun(x, n)
 			}
 			for range n {
 				copy(row[4*x:4*x+4], row[4*x-4:4*x])

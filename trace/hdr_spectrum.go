@@ -54,7 +54,8 @@ func primariesAt(w gems.Wavelength) (rgb [3]float64) {
 // primaryLuminances returns the luminance of each primary in front of an illuminant.
 func primaryLuminances(s *Illuminant) (y [3]float64) {
 	for k := range y {
-		y[k] = tristimulus(tracedFrom, tracedTo, func(w gems.Wavelength) float64 { return primariesAt(w)[k] * s.At(w) })[1]
+		lit := func(w gems.Wavelength) float64 { return primariesAt(w)[k] * s.At(w) }
+		y[k] = tristimulus(tracedFrom, tracedTo, lit)[1]
 	}
 	return y
 }

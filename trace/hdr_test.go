@@ -34,7 +34,8 @@ func paint(high int, of func(x, y float64) [4]byte) pixels {
 }
 
 func (s pixels) header() *bytes.Buffer {
-	return bytes.NewBufferString(fmt.Sprintf("#?RADIANCE\n# painted\nEXPOSURE=2\nFORMAT=32-bit_rle_rgbe\n\n-Y %d +X %d\n", s.high, s.wide))
+	const head = "#?RADIANCE\n# painted\nEXPOSURE=2\nFORMAT=32-bit_rle_rgbe\n\n"
+	return bytes.NewBufferString(fmt.Sprintf("%s-Y %d +X %d\n", head, s.high, s.wide))
 }
 
 // flat writes the pixels as they are.
@@ -103,7 +104,8 @@ func mustReadPanorama(t *testing.T, data []byte, zenith ...mgl64.Vec3) *Light {
 	return l
 }
 
-const rgbe = "G. Ward, Real pixels, Graphics Gems II (1991), and the picture format of the Radiance reference, from memory"
+const rgbe = "G. Ward, Real pixels, Graphics Gems II (1991), and the picture format " +
+	"of the Radiance reference, from memory"
 
 func TestPixelsDecode(t *testing.T) {
 	for _, row := range []struct {
@@ -289,7 +291,8 @@ func TestLargePanoramaIsAveragedDown(t *testing.T) {
 	run(wide, 100)
 	run(wide, 130)
 	head := fmt.Sprintf("#?RGBE\n\n-Y %d +X %d\n", wide/2, wide)
-	l, err := ReadPanorama(io.MultiReader(strings.NewReader(head), &repeated{row: row, left: wide / 2}), "large.hdr")
+	body := &repeated{row: row, left: wide / 2}
+	l, err := ReadPanorama(io.MultiReader(strings.NewReader(head), body), "large.hdr")
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -298,9 +301,11 @@ func TestLargePanoramaIsAveragedDown(t *testing.T) {
 		t.Fatalf("kept %d × %d and %d numbers", p.wide, p.high, len(p.texels))
 	}
 	for x, mantissa := range map[int]float64{0: 50.5, keptWide/2 - 1: 50.5, keptWide/2 + 1: 150.5, keptWide - 1: 150.5} {
-		near(t, "red", float64(p.texels[3*(100*keptWide+x)]), mantissa/256*4, 1e-6, "exponent 130: 2² × mantissa/256")
+		near(t, "red", float64(p.texels[3*(100*keptWide+x)]), mantissa/256*4, 1e-6,
+			"exponent 130: 2² × mantissa/256")
 	}
-	near(t, "green received", p.received[1], 150.5/256*4, 2e-3, "the mean of alternate columns, which are met 1.22 to a texel")
+	near(t, "green received", p.received[1], 150.5/256*4, 2e-3,
+		"the mean of alternate columns, which are met 1.22 to a texel")
 }
 
 func TestHostilePanoramas(t *testing.T) {
@@ -361,10 +366,12 @@ func TestHostilePanoramas(t *testing.T) {
 		}
 	}
 	broken := errors.New("the disk is gone")
-	if _, err := ReadPanorama(io.MultiReader(bytes.NewReader(good[:90]), &failing{broken}), "sky.hdr"); !errors.Is(err, broken) {
+	disk := io.MultiReader(bytes.NewReader(good[:90]), &failing{broken})
+	if _, err := ReadPanorama(disk, "sky.hdr"); !errors.Is(err, broken) {
 		t.Errorf("a reading error is told as %v", err)
 	}
-	if _, err := ReadPanorama(bytes.NewReader(good), "sky.hdr", mgl64.Vec3{}); err == nil || !strings.Contains(err.Error(), "no direction") {
+	_, err := ReadPanorama(bytes.NewReader(good), "sky.hdr", mgl64.Vec3{})
+	if err == nil || !strings.Contains(err.Error(), "no direction") {
 		t.Errorf("a zenith of no direction is told as %v", err)
 	}
 	// What older programs write is taken.

@@ -138,59 +138,65 @@ func FindIlluminant(name string) (Illuminant, error) {
 	}
 	for _, t := range tabulated {
 		if wanted == t.name {
-			return scaled(t.name, "CIE 015:2018, "+t.about, func(i int, _ gems.Wavelength) float64 { return t.power[i] }), nil
+			row := func(i int, _ gems.Wavelength) float64 { return t.power[i] }
+			return scaled(t.name, "CIE 015:2018, "+t.about, row), nil
 		}
 	}
 	if kind, kelvin, ok := strings.Cut(wanted, "-"); ok && (kind == "PLANCK" || kind == "DAYLIGHT") {
 		temperature, err := strconv.ParseFloat(strings.TrimSuffix(kelvin, "K"), 64)
 		if err != nil {
-			return Illuminant{}, fmt.Errorf("illuminant %q: %q is no temperature; write kelvins, for instance %s-5000",
-				name, kelvin, strings.ToLower(kind))
+			return Illuminant{}, fmt.Errorf("illuminant %q: %q is no temperature; "+
+				"write kelvins, for instance %s-5000", name, kelvin, strings.ToLower(kind))
 		}
 		if kind == "PLANCK" {
 			return Planck(temperature)
 		}
 		return Daylight(temperature)
 	}
-	return Illuminant{}, fmt.Errorf("illuminant %q is not known; use one of %s (the last two with any temperature in kelvin)",
-		name, strings.Join(IlluminantNames(), ", "))
+	return Illuminant{}, fmt.Errorf("illuminant %q is not known; use one of %s "+
+		"(the last two with any temperature in kelvin)", name, strings.Join(IlluminantNames(), ", "))
 }
 
 // illuminantA is an incandescent lamp, by the standard's own formula and constants.
 func illuminantA() Illuminant {
-	return scaled("A", "ISO/CIE 11664-2, incandescent lamp, by its formula", func(_ int, w gems.Wavelength) float64 {
+	formula := func(_ int, w gems.Wavelength) float64 {
 		const c = 1.435e7 / 2848 // nm
 		l := float64(w)
 		return 100 * math.Pow(560/l, 5) * math.Expm1(c/560) / math.Expm1(c/l)
-	})
+	}
+	return scaled("A", "CIE 015:2018, incandescent lamp, by its formula", formula)
 }
 
 // Planck returns a full radiator of the given temperature, 1000 to 50000 K.
 func Planck(kelvin float64) (Illuminant, error) {
 	if !(kelvin >= leastPlanck && kelvin <= mostPlanck) {
-		return Illuminant{}, fmt.Errorf("full radiator of %g K is outside %d to %d K", kelvin, leastPlanck, mostPlanck)
+		return Illuminant{}, fmt.Errorf("full radiator of %g K is outside %d to %d K",
+			kelvin, leastPlanck, mostPlanck)
 	}
 	name := "planck-" + strconv.FormatFloat(kelvin, 'g', -1, 64)
-	return scaled(name, "Planck's law, c2 = 1.4388e-2 m K (CIE 015:2018)", func(_ int, w gems.Wavelength) float64 {
+	law := func(_ int, w gems.Wavelength) float64 {
 		l := float64(w)
 		return math.Pow(560/l, 5) / math.Expm1(1.4388e7/(l*kelvin))
-	}), nil
+	}
+	return scaled(name, "Planck's law, c2 = 1.4388e-2 m K (CIE 015:2018)", law), nil
 }
 
 // Daylight returns a phase of daylight of the given correlated colour temperature,
 // 4000 to 25000 K on the present scale, on which D65 is 6504 K.
 func Daylight(kelvin float64) (Illuminant, error) {
 	if !(kelvin >= leastDaylight && kelvin <= mostDaylight) {
-		return Illuminant{}, fmt.Errorf("daylight of %g K is outside %d to %d K", kelvin, leastDaylight, mostDaylight)
+		return Illuminant{}, fmt.Errorf("daylight of %g K is outside %d to %d K",
+			kelvin, leastDaylight, mostDaylight)
 	}
 	x, y := daylightLocus(kelvin)
 	m := 0.0241 + 0.2562*x - 0.7341*y
 	m1 := (-1.3515 - 1.7703*x + 5.9114*y) / m
 	m2 := (0.0300 - 31.4424*x + 30.0717*y) / m
 	name := "daylight-" + strconv.FormatFloat(kelvin, 'g', -1, 64)
-	return scaled(name, "CIE 015:2018, daylight of a colour temperature", func(i int, _ gems.Wavelength) float64 {
+	phase := func(i int, _ gems.Wavelength) float64 {
 		return max(0, daylightMean[i]+m1*daylightYellowBlue[i]+m2*daylightPinkGreen[i])
-	}), nil
+	}
+	return scaled(name, "CIE 015:2018, daylight of a colour temperature", phase), nil
 }
 
 // daylightLocus returns the chromaticity x, y of daylight, CIE 015:2018.

@@ -79,7 +79,8 @@ func TestIlluminantsHaveTheirPublishedChromaticity(t *testing.T) {
 }
 
 func TestPlanckianColours(t *testing.T) {
-	const source = "Robertson, J. Opt. Soc. Am. 58 (1968) 1528: CIE 1960 u, v by reciprocal temperature, read in the same library"
+	const source = "Robertson, J. Opt. Soc. Am. 58 (1968) 1528: CIE 1960 u, v by " +
+		"reciprocal temperature, read in the same library"
 	for _, row := range []struct{ megakelvin, u, v float64 }{
 		{20, 0.18133, 0.26846}, {50, 0.18388, 0.27709}, {100, 0.19032, 0.29326}, {150, 0.19962, 0.30921},
 		{200, 0.21142, 0.32312}, {300, 0.24010, 0.34308}, {400, 0.27218, 0.35407}, {500, 0.30505, 0.35907},
@@ -100,7 +101,8 @@ func TestPlanckianColours(t *testing.T) {
 	for w := tracedLo; w <= tracedHi; w += 50 {
 		// c2/T is 1.435e7/2848 nm in A's own formula, 0.8 nm more than 1.4388e7/2856 nm: between
 		// 400 and 560 nm that makes 6e-4.
-		near(t, "A against a radiator of 2856 K", p.At(w)/a.At(w), 1, 7e-4, "CIE 015:2018: A is Planck's law of 2856 K")
+		near(t, "A against a radiator of 2856 K", p.At(w)/a.At(w), 1, 7e-4,
+			"CIE 015:2018: A is Planck's law of 2856 K")
 	}
 }
 

@@ -90,7 +90,8 @@ func newLight(name, source, illuminant string, s shape) (*Light, error) {
 	}
 	e := s.illuminance()
 	if !(e > 0) || math.IsInf(e, 0) {
-		return nil, fmt.Errorf("light %q: nothing of it reaches a plane that faces the eye; turn its zenith toward the eye", name)
+		return nil, fmt.Errorf("light %q: nothing of it reaches a plane that faces the eye; "+
+			"turn its zenith toward the eye", name)
 	}
 	return &Light{Name: name, Source: source, Illuminant: spectrum, shape: s, scale: 1 / e}, nil
 }
@@ -115,14 +116,16 @@ func FindLight(name string, zenith ...mgl64.Vec3) (*Light, error) {
 		return nil, fmt.Errorf("light %q: %w", name, err)
 	}
 	if (name == "even" || name == "ring") && !(up.Normalize()[2] > 1-eyeTolerance) {
-		return nil, fmt.Errorf("light %q belongs to the eye and has no zenith of its own; leave the zenith out", name)
+		return nil, fmt.Errorf("light %q belongs to the eye and has no zenith of its own; "+
+			"leave the zenith out", name)
 	}
 	switch name {
 	case "even":
-		return newLight(name, "the same luminance in every direction above the picture's plane", "E", evenShape{})
+		return newLight(name, "the same luminance in every direction above the picture's plane",
+			"E", evenShape{})
 	case "overcast":
-		return newLight(name, "CIE standard overcast sky (Moon & Spencer 1942; ISO 15469/CIE S 011), spectrum D65, "+groundNote,
-			"D65", newSky(overcastSky{}, turned, nil))
+		return newLight(name, "CIE standard overcast sky (Moon & Spencer 1942; ISO 15469/CIE S 011), "+
+			groundNote, "D65", newSky(overcastSky{}, turned, nil))
 	case "clear", "sun":
 		sun := turned.Mul3x1(DirectionOf(usualSunElevation, usualSunAzimuth))
 		return ClearSky(turned.Mul3x1(eye), sun, name == "sun")

@@ -43,14 +43,16 @@ func discShare(sinE float64, halfAngle facets.Angle) float64 {
 // The lamps' geometry: bulbs as in a shop or over a bench, none in the middle of the
 // viewer's head. Every lamp has the same luminance.
 const (
-	lampDiameter    = 0.060 // m, a common frosted bulb
-	lampDistance    = 1.0   // m from the stone
-	lampSurround    = 0.1   // of the illuminance comes evenly from the rest of the half space
-	lampsNote       = "six frosted bulbs 60 mm across, 1 m from the stone (3.4° each), at 35° to 68° elevation, and a tenth of the illuminance evenly from all around; our own geometry; spectrum A"
-	ringInner       = 0.080 // m, radius
-	ringOuter       = 0.110 // m
-	ringDistance    = 0.300 // m, the eye's
-	ringNote        = "a ring lamp of 160 to 220 mm about the eye, 300 mm from the stone (14.9° to 20.1° from the eye), dark elsewhere; our own geometry; spectrum LED-B5"
+	lampDiameter = 0.060 // m, a common frosted bulb
+	lampDistance = 1.0   // m from the stone
+	lampSurround = 0.1   // of the illuminance comes evenly from the rest of the half space
+	lampsNote    = "six frosted bulbs 60 mm across, 1 m from the stone (3.4° each), at 35° to 68° elevation, " +
+		"and a tenth of the illuminance evenly from all around; our own geometry"
+	ringInner    = 0.080 // m, radius
+	ringOuter    = 0.110 // m
+	ringDistance = 0.300 // m, the eye's
+	ringNote     = "a ring lamp of 160 to 220 mm about the eye, 300 mm from the stone " +
+		"(14.9° to 20.1° from the eye), dark elsewhere; our own geometry"
 	lampsOverOthers = 1 - lampSurround
 )
 

@@ -29,8 +29,9 @@ var (
 	}
 )
 
-const roomNote = "a room of 5 × 4 × 2.7 m by day, the stone on a table 0.75 m high; two windows 1.1 × 1.4 m to the left " +
-	"(3000 cd/m²), four ceiling panels of 0.6 m (4000 cd/m²), walls 60, ceiling 80, floor 20 cd/m²; our own geometry; spectrum LED-B4"
+const roomNote = "a room of 5 × 4 × 2.7 m by day, the stone on a table 0.75 m high; " +
+	"two windows 1.1 × 1.4 m to the left (3000 cd/m²), four ceiling panels of 0.6 m (4000 cd/m²), " +
+	"walls 60, ceiling 80, floor 20 cd/m²; our own geometry"
 
 // panel is a bright rectangle in a face of the room. Its bounds are along the two axes
 // that the face spans, in the order x, y, z.
@@ -97,7 +98,9 @@ func (s *roomShape) share(face int, lo, hi mgl64.Vec2) float64 {
 		c[u], c[v] = x, y
 		return s.turned.Mul3x1(c)
 	}
-	return polygonShare([]mgl64.Vec3{corner(lo[0], lo[1]), corner(hi[0], lo[1]), corner(hi[0], hi[1]), corner(lo[0], hi[1])})
+	return polygonShare([]mgl64.Vec3{
+		corner(lo[0], lo[1]), corner(hi[0], lo[1]), corner(hi[0], hi[1]), corner(lo[0], hi[1]),
+	})
 }
 
 // polygonShare returns the illuminance, over π, of the plane z = 0 at the origin by the

@@ -23,6 +23,8 @@ const groundReflectance = 0.2
 
 const groundNote = "above a ground that scatters 0.2 of it"
 
+const clearNote = "CIE standard clear sky of low turbidity (type 12 of ISO 15469/CIE S 011)"
+
 // sunRadius is the half-angle over which the light of the sun is spread. The sun's own
 // is 0.27°, which one backward ray in 90,000 would meet; 2.5° is the half-angle of
 // the instruments that meteorologists measure direct sunlight with (WMO No. 8,
@@ -51,17 +53,17 @@ func ClearSky(zenith, sun mgl64.Vec3, disc bool) (*Light, error) {
 	inSky := turned.Transpose().Mul3x1(sun.Mul(1 / length))
 	elevation := facets.Angle(math.Asin(max(-1, min(1, inSky[2]))))
 	if elevation < leastSunElevation-1e-9 {
-		return nil, fmt.Errorf("clear sky: the sun stands %v over the horizon; %v is the least", elevation, leastSunElevation)
+		return nil, fmt.Errorf("clear sky: the sun stands %v over the horizon; %v is the least",
+			elevation, leastSunElevation)
 	}
 	about := fmt.Sprintf("sun at %v elevation, %s", elevation, groundNote)
 	sky := newClearSky(inSky)
 	if !disc {
-		return newLight("clear", "CIE standard clear sky of low turbidity (type 12 of ISO 15469/CIE S 011) without the sun's disc, spectrum D75, "+about,
+		return newLight("clear", clearNote+" without the sun's disc, "+about,
 			"D75", newSky(sky, turned, nil))
 	}
-	return newLight("sun", "CIE standard clear sky of low turbidity (type 12 of ISO 15469/CIE S 011), spectrum D65, with sunlight "+
-		"as IES RP-21 (1984) gives it, spread over 2.5° about the sun; "+about,
-		"D65", newSky(sky, turned, &inSky))
+	return newLight("sun", clearNote+" with sunlight as the IES (1984) gives it, spread over 2.5° about the sun; "+
+		about, "D65", newSky(sky, turned, &inSky))
 }
 
 // directToDiffuse returns how much sunlight falls on level ground under a clear sky,

@@ -81,7 +81,8 @@ func TestRadianceIsLuminanceTimesSpectrum(t *testing.T) {
 			if l.Luminance(d) < 0 || d[2] <= 0 && (l.Luminance(d) != 0 || l.Radiance(d, w) != 0) {
 				t.Errorf("%s from %v: luminance %v, radiance %v", l.Name, d, l.Luminance(d), l.Radiance(d, w))
 			}
-			near(t, l.Name, l.Radiance(d, w), l.Luminance(d)*l.Illuminant.At(w), 1e-12, "one spectrum for all directions")
+			near(t, l.Name, l.Radiance(d, w), l.Luminance(d)*l.Illuminant.At(w), 1e-12,
+				"one spectrum for all directions")
 		}
 		if l.Source == "" {
 			t.Errorf("%s has no source", l.Name)
@@ -90,7 +91,8 @@ func TestRadianceIsLuminanceTimesSpectrum(t *testing.T) {
 	eye := mgl64.Vec3{0, 0, 1}
 	a := mustFindIlluminant(t, "A")
 	l := mustFindLight(t, "overcast")
-	near(t, "the same sky in the spectrum A", l.Under(a).Radiance(eye, 600), l.Luminance(eye)*a.At(600), 1e-12, "another spectrum")
+	near(t, "the same sky in the spectrum A", l.Under(a).Radiance(eye, 600), l.Luminance(eye)*a.At(600), 1e-12,
+		"another spectrum")
 	if l.Illuminant.Name != "D65" {
 		t.Error("Under changed the light it was asked of")
 	}
@@ -134,7 +136,8 @@ func TestGeneralSky(t *testing.T) {
 
 	// The clear sky of CIE 22 (1973), of which type 12 is the heir: its constant is 0.91
 	// where the new one's is 1 - 10 exp(-3π/2) = 0.9102.
-	const kittler = "R. Kittler 1967, as coded in NREL/Radiance src/gen/skybright.cal, read: (0.91 + 10 exp(-3γ) + 0.45 cos²γ)(1 - exp(-0.32/cos Z))"
+	const kittler = "R. Kittler 1967, as coded in NREL/Radiance src/gen/skybright.cal, " +
+		"read: (0.91 + 10 exp(-3γ) + 0.45 cos²γ)(1 - exp(-0.32/cos Z))"
 	for _, elevation := range []facets.Angle{15, 45, 70} {
 		sun := DirectionOf(elevation*facets.Degree, 0)
 		sky := newClearSky(sun)
@@ -143,19 +146,22 @@ func TestGeneralSky(t *testing.T) {
 			return (0.91 + 10*math.Exp(-3*gamma) + 0.45*math.Pow(math.Cos(gamma), 2)) * (1 - math.Exp(-0.32/d[2]))
 		}
 		for _, d := range []mgl64.Vec3{sun, DirectionOf(20*facets.Degree, 3), DirectionOf(50*facets.Degree, 1), DirectionOf(1*facets.Degree, 2)} {
-			near(t, "clear sky", sky.luminance(d), old(d)/old(mgl64.Vec3{0, 0, 1}), 3e-4*sky.luminance(d), kittler)
+			near(t, "clear sky", sky.luminance(d), old(d)/old(mgl64.Vec3{0, 0, 1}), 3e-4*sky.luminance(d),
+				kittler)
 		}
 	}
 }
 
 func TestSunlight(t *testing.T) {
-	const ies = "IES RP-21 (1984), by hand at 45°: 127.5 exp(-0.21/0.70711) 0.70711 = 66.99 klx over 0.8 + 15.5 √0.70711 = 13.83 klx"
+	const ies = "IES RP-21 (1984), by hand at 45°: 127.5 exp(-0.21/0.70711) 0.70711 = " +
+		"66.99 klx over 0.8 + 15.5 √0.70711 = 13.83 klx"
 	sky, sun := mustFindLight(t, "clear"), mustFindLight(t, "sun")
 	blue := DirectionOf(60*facets.Degree, 200*facets.Degree)
 	near(t, "sun and sky over sky alone", sky.Luminance(blue)/sun.Luminance(blue), 1+4.842, 2e-3, ies)
 	centre := DirectionOf(usualSunElevation, usualSunAzimuth)
 	if beside := DirectionOf(usualSunElevation+2.6*facets.Degree, usualSunAzimuth); sun.Luminance(centre) < 100*sun.Luminance(beside) {
-		t.Errorf("the sun's disc has the luminance %v, beside it %v", sun.Luminance(centre), sun.Luminance(beside))
+		t.Errorf("the sun's disc has the luminance %v, beside it %v",
+			sun.Luminance(centre), sun.Luminance(beside))
 	}
 	zenith := mgl64.Vec3{0, 1, 1}
 	for name, row := range map[string]struct {
@@ -178,8 +184,10 @@ func TestDiscShare(t *testing.T) {
 	for _, degree := range []float64{0.5, 2.5, 20, 60} {
 		a := facets.Angle(degree) * facets.Degree
 		r := a.Radians()
-		near(t, "overhead", discShare(1, a), math.Pow(math.Sin(r), 2), 1e-15, "illuminance of a disc overhead: π L sin²")
-		near(t, "half below", discShare(0, a), (r-math.Sin(r)*math.Cos(r))/math.Pi, 1e-7*r, "a disc on the horizon: L (a - sin a cos a)")
+		near(t, "overhead", discShare(1, a), math.Pow(math.Sin(r), 2), 1e-15,
+			"illuminance of a disc overhead: π L sin²")
+		near(t, "half below", discShare(0, a), (r-math.Sin(r)*math.Cos(r))/math.Pi, 1e-7*r,
+			"a disc on the horizon: L (a - sin a cos a)")
 		for _, e := range []float64{0.1, 0.7, 0.999} {
 			sin := math.Sin(e * r)
 			near(t, "the parts above and below", discShare(sin, a)-discShare(-sin, a), math.Pow(math.Sin(r), 2)*sin, 1e-7*r,
@@ -190,7 +198,8 @@ func TestDiscShare(t *testing.T) {
 }
 
 func TestPolygonShare(t *testing.T) {
-	const source = "view factor of a rectangle parallel to and over the corner of a surface element, Howell, Catalog of Radiation Configuration Factors B-3; from memory"
+	const source = "view factor of a rectangle parallel to and over the corner of a " +
+		"surface element, Howell, Catalog of Radiation Configuration Factors B-3; from memory"
 	for _, s := range [][2]float64{{0.5, 0.5}, {2, 0.3}, {10, 10}} {
 		x, y := s[0], s[1]
 		want := (x/math.Hypot(1, x)*math.Atan(y/math.Hypot(1, x)) + y/math.Hypot(1, y)*math.Atan(x/math.Hypot(1, y))) / (2 * math.Pi)
@@ -198,7 +207,8 @@ func TestPolygonShare(t *testing.T) {
 		near(t, "parallel rectangle", polygonShare(corners), want, 1e-14, source)
 	}
 	wall := []mgl64.Vec3{{-1e6, 1, -1e6}, {1e6, 1, -1e6}, {1e6, 1, 1e6}, {-1e6, 1, 1e6}}
-	near(t, "a wall without end, cut at the horizon", polygonShare(wall), 0.5, 1e-5, "half of all that a level plane sees")
+	near(t, "a wall without end, cut at the horizon", polygonShare(wall), 0.5, 1e-5,
+		"half of all that a level plane sees")
 	near(t, "below", polygonShare([]mgl64.Vec3{{0, 0, -1}, {1, 0, -1}, {0, 1, -1}}), 0, 0, "below the plane")
 
 	for _, z := range zeniths {

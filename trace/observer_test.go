@@ -11,7 +11,8 @@ import (
 )
 
 func TestObserverSums(t *testing.T) {
-	const source = "sums of the CIE 1931 functions over 360 to 830 nm at 1 nm, computed from the library's table: 106.8655, 106.8569, 106.8923"
+	const source = "sums of the CIE 1931 functions over 360 to 830 nm at 1 nm, computed " +
+		"from the library's table: 106.8655, 106.8569, 106.8923"
 	var sum [3]float64
 	for i := range tableSteps {
 		x, y, z := gems.Observer(tableLo + tableStep*gems.Wavelength(i))
@@ -61,7 +62,8 @@ func TestColourSampling(t *testing.T) {
 }
 
 func TestUniformChromaticity(t *testing.T) {
-	const source = "u' = 4x/(3 - 2x + 12y), v' = 9y/(3 - 2x + 12y) of the chromaticities in IEC 61966-2-1, to four digits"
+	const source = "u' = 4x/(3 - 2x + 12y), v' = 9y/(3 - 2x + 12y) of the chromaticities " +
+		"in IEC 61966-2-1, to four digits"
 	for _, row := range []struct {
 		name       string
 		x, y, u, v float64
@@ -97,7 +99,8 @@ func TestDisplayShowsPublishedColours(t *testing.T) {
 		near(t, "blue", c.B, row.srgb[2], 3e-4, source)
 	}
 	near(t, "the curve", encode(0.18), 0.461356129500442, 1e-12, source)
-	near(t, "the curve's two parts meet", encode(0.0031308), encode(math.Nextafter(0.0031308, 1)), 1e-7, "IEC 61966-2-1")
+	near(t, "the curve's two parts meet", encode(0.0031308), encode(math.Nextafter(0.0031308, 1)), 1e-7,
+		"IEC 61966-2-1")
 
 	// A screen's colour comes back from its tristimulus values.
 	rng := rand.New(rand.NewPCG(5, 8))
@@ -111,7 +114,8 @@ func TestDisplayShowsPublishedColours(t *testing.T) {
 }
 
 func TestDisplayAdapts(t *testing.T) {
-	const source = "Bradford matrix from D65 to D50, tests of the open library colour-science/colour at 9d743142, read"
+	const source = "Bradford matrix from D65 to D50, tests of the open library " +
+		"colour-science/colour at 9d743142, read"
 	toD50 := mgl64.Mat3FromRows(
 		mgl64.Vec3{1.04792979, 0.02294687, -0.05019227},
 		mgl64.Vec3{0.02962781, 0.99043443, -0.01707380},
@@ -130,7 +134,8 @@ func TestDisplayAdapts(t *testing.T) {
 		s := mustFindIlluminant(t, name)
 		c := NewDisplay(s.White(), 1).Colour(mgl64.Vec3(s.White()).Mul(0.5))
 		for _, v := range []float64{c.R, c.G, c.B} {
-			near(t, "half of the white of "+name, v, encode(0.5), 1e-9, "an adapted eye sees a white diffuser white")
+			near(t, "half of the white of "+name, v, encode(0.5), 1e-9,
+				"an adapted eye sees a white diffuser white")
 		}
 	}
 }
@@ -150,13 +155,15 @@ func TestDisplayKeepsLuminanceInGamut(t *testing.T) {
 		x, y, z := gems.Observer(w)
 		for _, level := range []float64{0.01, 0.5, 0.99} {
 			rgb := decode(d.Colour([3]float64{level * x / y, level, level * z / y}))
-			near(t, "luminance of "+w.String(), xyzFromSRGB.Mul3x1(rgb)[1], level, 2e-5, "the colour moves in a plane of equal luminance; the curve's parts meet to 1e-5")
+			near(t, "luminance of "+w.String(), xyzFromSRGB.Mul3x1(rgb)[1], level, 2e-5,
+				"the colour moves in a plane of equal luminance; the curve's parts meet to 1e-5")
 			if least, most := min(rgb[0], rgb[1], rgb[2]), max(rgb[0], rgb[1], rgb[2]); least > 1e-9 && most < 1-1e-9 {
 				t.Errorf("%v at %v is grayer than it must be: %v", w, level, rgb)
 			}
 		}
 		bright := d.Colour([3]float64{2 * x / y, 2, 2 * z / y})
-		near(t, "the least part of a colour brighter than white", min(bright.R, bright.G, bright.B), 1, 1e-12, "white")
+		near(t, "the least part of a colour brighter than white", min(bright.R, bright.G, bright.B), 1, 1e-12,
+			"white")
 	}
 	for _, xyz := range [][3]float64{{}, {math.NaN(), math.NaN(), 1}, {1, -1, 1}} {
 		if c := d.Colour(xyz); c != (gems.Colour{}) {
