@@ -123,6 +123,17 @@ func key(values []float64, e effort, seed uint64) string {
 	return b.String()
 }
 
+// fromKey returns the values and the rays of a key.
+func fromKey(name string, n int) (values []float64, e effort) {
+	fields := strings.Fields(name)
+	for _, f := range fields[:n] {
+		v, _ := strconv.ParseFloat(f, 64) // key wrote it
+		values = append(values, v)
+	}
+	e.rays, _ = strconv.Atoi(fields[n])
+	return values, e
+}
+
 // try judges values. The only errors are those of ctx and of the file that keeps what
 // was seen.
 func (j *judge) try(ctx context.Context, values []float64, e effort) (Trial, error) {
@@ -380,6 +391,9 @@ func (g *Goal) weigh(values []float64, s sight) Trial {
 			}
 		}
 		t.Measures, t.MeasureErrors = append(t.Measures, v), append(t.MeasureErrors, e)
+	}
+	if g.toward != nil {
+		t.Score = g.toward.score(t.Measures)
 	}
 	return t
 }

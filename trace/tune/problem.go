@@ -99,6 +99,8 @@ type Goal struct {
 	Aims  []Aim
 	Cases []Case
 	Worst bool // the worst case counts; otherwise their mean
+
+	toward *toward // in place of the weighted sum, for trade-offs
 }
 
 // Limits are what the lap, the rough and the owner demand. A zero field demands nothing.

@@ -337,6 +337,8 @@ func TestToleranceFaults(t *testing.T) {
 	ctx, cancel := context.WithCancelCause(context.Background())
 	stop := errors.New("stop")
 	p = good
+	p.Draws, p.Workers = 100, 1
+	p.observe = func(context.Context, *facets.Stone, uint64) ([2]float64, error) { return [2]float64{0.5, 0}, nil }
 	got, err := Tolerate(ctx, &p, func(done float64) {
 		if done > 0.3 {
 			cancel(stop)
