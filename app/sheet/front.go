@@ -191,19 +191,20 @@ func (l *press) threeViews() {
 	t := l.body()
 	const gap = 6
 	heights := t.Width("pavilion 00.00") + 7
-	side := fmt.Sprintf("from the side, %.2f mm", extent[1])
+	const side = "from the side"
 	height := min(0.2*l.sheet.Paper.Height, 52)
 	scale := roundScale(min(height/extent[0], height/extent[2], (l.width()-heights-2*gap)/(3*extent[1])))
+	above := fmt.Sprintf("from above, drawn %s : 1", trimmed(scale, 2))
 	cell := func(words string) float64 { return max(scale*extent[1], t.Width(words)) }
 	tall := scale * max(extent[0], extent[2])
-	l.need(tall + 4*t.Leading())
+	l.need(tall + 3*t.Leading())
 	middle := l.y + tall/2 + 1
 	x := l.left()
 	for _, look := range []struct {
 		words string
 		axes  func() (mgl64.Vec3, mgl64.Vec3)
 	}{
-		{"from above", fromAbove}, {"from below", fromBelow},
+		{above, fromAbove}, {"from below", fromBelow},
 		{side, func() (mgl64.Vec3, mgl64.Vec3) { return fromSide(0) }},
 	} {
 		right, up := look.axes()
@@ -216,9 +217,7 @@ func (l *press) threeViews() {
 			l.heights(&v, at.X+scale*extent[1]/2+1.5)
 		}
 	}
-	l.y += tall + 2*t.Leading() + 1
-	l.page.Write(t, pale(), drawing.Right, drawing.Point{X: l.right(), Y: l.y + 0.78*t.Leading()}, fmt.Sprintf("drawn %s : 1", trimmed(scale, 2)))
-	l.y += t.Leading()
+	l.y += tall + 2*t.Leading() + 2.5
 }
 
 // heights writes the heights of crown, girdle and pavilion beside the view from the

@@ -39,8 +39,8 @@ func Trace(ctx context.Context, job *Job, media []*gems.Material, report func(do
 		return err
 	}
 	settings := trace.Settings{Head: facets.Angle(job.HeadDeg) * facets.Degree, Pixels: lightPixels, Error: lightError, Seed: 1}
-	errors := miscutPlans(job.Plan)
-	weight := 1 / (1 + float64(len(errors))/float64(len(media)))
+	wrong := miscutPlans(job.Plan)
+	weight := 1 / (1 + float64(len(wrong))/float64(len(media)))
 	tell := func(done float64) {
 		if report != nil {
 			report(done)
@@ -52,7 +52,7 @@ func Trace(ctx context.Context, job *Job, media []*gems.Material, report func(do
 		return err
 	}
 	job.Miscuts = nil
-	for i, m := range errors {
+	for i, m := range wrong {
 		stone, err := m.plan.Solve()
 		if err != nil {
 			continue // its corners do not come together at these angles: there is no stone to look at
@@ -62,7 +62,7 @@ func Trace(ctx context.Context, job *Job, media []*gems.Material, report func(do
 			return err
 		}
 		job.Miscuts = append(job.Miscuts, Miscut{Side: m.side, By: m.by, Return: r.Columns[0].Ledger.Returned, Error: r.Columns[0].StandardError.Returned})
-		tell(weight + (1-weight)*float64(i+1)/float64(len(errors)))
+		tell(weight + (1-weight)*float64(i+1)/float64(len(wrong)))
 	}
 	tell(1)
 	return nil
@@ -80,14 +80,14 @@ func miscutPlans(plan *facets.Plan) []miscutPlan {
 	for _, side := range []facets.Side{facets.Pavilion, facets.Crown} {
 		for _, by := range []facets.Angle{-toleranceAngle, toleranceAngle} {
 			changed := plan.Clone()
-			any := false
+			changedAny := false
 			for i := range changed.Tiers {
 				t := &changed.Tiers[i]
-				if wrong := t.Angle + by; t.Side == side && t.HasAngle && t.Angle > 0 && wrong > 0 && wrong < 90*facets.Degree {
-					t.Angle, any = wrong, true
+				if off := t.Angle + by; t.Side == side && t.HasAngle && t.Angle > 0 && off > 0 && off < 90*facets.Degree {
+					t.Angle, changedAny = off, true
 				}
 			}
-			if any {
+			if changedAny {
 				all = append(all, miscutPlan{side, by, changed})
 			}
 		}
