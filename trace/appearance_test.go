@@ -35,7 +35,7 @@ func TestAppearanceOfPlate(t *testing.T) {
 	}
 	within("luminance", a.Luminance, back)
 	within("dark area", a.DarkArea, 1) // 0.077 lies under a tenth
-	if a.Contrast.Value > 0.05 { // a root of noise about 0, and the rim, where orders are lost
+	if a.Contrast.Value > 0.05 {       // a root of noise about 0, and the rim, where orders are lost
 		t.Errorf("contrast: %v, want almost none", a.Contrast)
 	}
 	within("fire", a.Fire, 0)

@@ -365,8 +365,13 @@ func (j *journey) lambert(n vec) vec {
 	return n.scale(math.Sqrt(1-u)).plus(r*cos, axes.a).plus(r*sin, axes.b)
 }
 
-// lose counts light that is absorbed; rounding may make it a trifle negative.
-func (j *journey) lose(power float64) { j.ledger.Absorbed += power }
+// lose counts light that is absorbed. Of a clear surface, rounding leaves a trifle of
+// either sign: the negative half is not counted.
+func (j *journey) lose(power float64) {
+	if power > 0 {
+		j.ledger.Absorbed += power
+	}
+}
 
 // put enters power that leaves along d in the ledger, and in the sums what is seen
 // of it. path is its way inside the stone.
