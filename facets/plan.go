@@ -46,6 +46,7 @@ type MaterialRef struct {
 	Name    string  // of the plan's own material
 	Index   float64 // refractive index of the plan's own material at the sodium D line
 	Density float64 // of the plan's own material, g/cm3; 0 where it names none
+	Line    int     // in the plan file; 0 where it was not read
 }
 
 // Axis is a direction in the stone to keep an eye on: an optic axis or the

@@ -286,7 +286,7 @@ func (r *reader) head(blocks []*block) {
 			p.Polish = r.strings(e)
 		case "material", "axis", "rough":
 			if e.key == "material" && e.value.kind == unstable.String {
-				p.Material.Key = r.str(e)
+				p.Material.Key, p.Material.Line = r.str(e), e.line
 				if p.Material.Key == "" {
 					r.fault(e.line, "material", "", "it is empty",
 						"give the key of a material, as in material = \"corundum\"")
@@ -325,6 +325,7 @@ func (r *reader) headTable(name string, line int, entries []entry) {
 	p := r.plan
 	switch name {
 	case "material":
+		p.Material.Line = line
 		r.known(entries, "material", []string{"name", "index", "density"})
 		for _, e := range entries {
 			switch e.key {

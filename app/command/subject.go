@@ -178,7 +178,7 @@ func (f *subjectFlags) materialOf(plan *facets.Plan) (*gems.Material, error) {
 
 // materialFault is the fault of a plan whose material cannot be had.
 func materialFault(plan *facets.Plan, err error) *facets.Fault {
-	return &facets.Fault{File: plan.File, Field: "material", Why: err.Error()}
+	return &facets.Fault{File: plan.File, Line: plan.Material.Line, Field: "material", Why: err.Error()}
 }
 
 // gapWords tells a near miss between planes that nearly share a corner.
