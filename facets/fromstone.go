@@ -43,7 +43,8 @@ func PlanOf(s *Stone, gear int) *Plan {
 			angle = 0
 		}
 		k := slices.IndexFunc(groups, func(g *group) bool {
-			return g.side == side && math.Abs(float64(g.angle-angle)) < oneTier && math.Abs(g.distance-f.Distance) < oneTier*reach
+			return g.side == side && math.Abs(float64(g.angle-angle)) < oneTier &&
+				math.Abs(g.distance-f.Distance) < oneTier*reach
 		})
 		if k < 0 {
 			groups = append(groups, &group{side: side, angle: angle, distance: f.Distance})

@@ -60,7 +60,8 @@ func (s *Stone) Block(margin float64) *Stone {
 // rough remain.
 func (p *Plan) Steps(solved *Solution, rough *Stone) ([]Step, error) {
 	if len(solved.Tiers) != len(p.Tiers) {
-		return nil, fmt.Errorf("the solution has %d tiers and the plan %d; solve the plan again", len(solved.Tiers), len(p.Tiers))
+		return nil, fmt.Errorf("the solution has %d tiers and the plan %d; solve the plan again",
+			len(solved.Tiers), len(p.Tiers))
 	}
 	if rough == nil {
 		rough = solved.Stone.Block(BlockMargin)

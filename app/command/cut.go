@@ -129,7 +129,8 @@ func (k *cutCommand) Run(c call) error {
 	result := cutResult{Pages: pages}
 	for _, f := range files {
 		path := filepath.Join(folder, f.name)
-		if err := drawing.WriteFile(path, func(w io.Writer) error { _, err := w.Write(f.content); return err }); err != nil {
+		whole := func(w io.Writer) error { _, err := w.Write(f.content); return err }
+		if err := drawing.WriteFile(path, whole); err != nil {
 			return disk(path, err)
 		}
 		result.Files = append(result.Files, path)
@@ -169,7 +170,8 @@ func (k *cutCommand) job() (sheet.Job, error) {
 		for text := range strings.SplitSeq(k.Gears, ",") {
 			n, err := strconv.Atoi(strings.TrimSpace(text))
 			if err != nil || n < 3 || n > 1000 {
-				return job, commandFaultf("--gears %q: %q is no gear; give numbers of teeth, 3 to 1000, with commas between", k.Gears, text)
+				return job, commandFaultf("--gears %q: %q is no gear; give numbers of teeth, 3 to 1000, with commas between",
+					k.Gears, text)
 			}
 			job.Gears = append(job.Gears, n)
 		}
@@ -244,7 +246,7 @@ func (k *cutCommand) plans(c call) (plans []*facets.Plan, materials []*gems.Mate
 		var fs facets.Faults
 		var told *fault
 		switch {
-		case !errors.As(err, &told) && errors.As(err, &fs), errors.As(err, &told) && told.status == InputFault && errors.As(err, &fs):
+		case (!errors.As(err, &told) || told.status == InputFault) && errors.As(err, &fs):
 			faults = append(faults, fs...)
 		case err != nil:
 			return nil, nil, err

@@ -34,7 +34,7 @@ func Booklet(title string, sheets []*Sheet) (*drawing.Document, error) {
 	t := l.body()
 	for i, page := range pages {
 		y := l.sheet.Paper.Height - l.margin() + t.Leading()
-		page.Write(t, pale(), drawing.Middle, drawing.Point{X: l.sheet.Paper.Width / 2, Y: y}, fmt.Sprint(i+1))
+		page.Write(t, pale(), drawing.Middle, pt(l.sheet.Paper.Width/2, y), fmt.Sprint(i+1))
 	}
 	return document(sheets, pages, title)
 }
@@ -58,7 +58,7 @@ func (l *press) contents(title string, sheets []*Sheet, bound [][]*drawing.Page,
 			name = append(name[:1], l.tier().Cut(name[1]+" "+name[2], l.width()-15*l.k))
 		}
 		l.need(float64(len(name))*l.tier().Leading() + l.body().Leading() + 2)
-		l.page.Write(l.tier(), black(), drawing.Right, drawing.Point{X: l.right(), Y: l.y + 0.78*l.tier().Leading()}, fmt.Sprint(number))
+		l.page.Write(l.tier(), black(), drawing.Right, pt(l.right(), l.y+0.78*l.tier().Leading()), fmt.Sprint(number))
 		for _, line := range name {
 			l.say(l.tier(), black(), l.left(), l.y+0.78*l.tier().Leading(), line)
 			l.y += l.tier().Leading()

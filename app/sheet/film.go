@@ -3,7 +3,6 @@ package sheet
 import (
 	"fmt"
 
-	"pavilight/app/drawing"
 	"pavilight/facets"
 )
 
@@ -16,11 +15,11 @@ func (l *press) film() {
 	if s.Rough.Stone != nil {
 		from = "from the plan's rough, " + s.Rough.Words
 	}
-	l.paragraph(l.body(), pale(), fmt.Sprintf("The stone after each step, %s, seen from the lap. Grey: what is left of the rough. "+
-		"Dark: what the step cut. Off: what it takes off, of the rough; layer: the thickest part of it.", from))
+	l.paragraph(l.body(), pale(), fmt.Sprintf("The stone after each step, %s, seen from the lap. "+
+		"Grey: what is left of the rough. Dark: what the step cut. Off: what it takes off, of the rough; layer: the thickest part of it.", from))
 	if !s.LeaveOut.Angles {
-		l.paragraph(l.body(), pale(), fmt.Sprintf("Cost: what %.2f mm too deep takes of width or height, and of the weight "+
-			"if the rough has nothing to spare and all the rest is cut smaller to match.", TooDeep))
+		l.paragraph(l.body(), pale(), fmt.Sprintf("Cost: what %.2f mm too deep takes of width or height, "+
+			"and of the weight if the rough has nothing to spare and all the rest is cut smaller to match.", TooDeep))
 	}
 	l.y += 2
 	across := max(2, int(l.width()/(40*l.k)))
@@ -58,7 +57,7 @@ func (s *Sheet) blockVolume() float64 {
 func (l *press) frame(r *Row, x, cell, picture, total float64) {
 	t := l.body()
 	right, up := fromLap(r.Facing)
-	v := fit(r.Step.Stone, right, up, drawing.Point{X: x + cell/2, Y: l.y + picture/2}, cell-2, picture-2, 1e9)
+	v := fit(r.Step.Stone, right, up, pt(x+cell/2, l.y+picture/2), cell-2, picture-2, 1e9)
 	v.solid(l.page, r.Step.Stone, r.Step.New, 0.8)
 	y := l.y + picture + 0.5
 	head := fmt.Sprintf("%d  %s", r.Number, r.Tier.Name)
@@ -71,7 +70,7 @@ func (l *press) frame(r *Row, x, cell, picture, total float64) {
 	if len(r.Step.New) == 0 {
 		words = "takes nothing off this rough"
 	}
-	if !l.sheet.LeaveOut.Angles {
+	if !l.sheet.LeaveOut.Angles && !r.Tier.Temporary {
 		words += fmt.Sprintf("\ncost %.2f mm, %.1f %%", r.TooDeepMM, r.TooDeepPct)
 	}
 	l.lines(t, black(), x, y, cell, words)

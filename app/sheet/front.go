@@ -28,7 +28,7 @@ func (l *press) front() {
 	for _, line := range lines {
 		_, missing := drawing.Clean(s.Plan.Name)
 		l.lacking = l.lacking || missing
-		l.page.Write(t, black(), drawing.Left, drawing.Point{X: l.left(), Y: l.y + 0.8*t.Leading()}, line)
+		l.page.Write(t, black(), drawing.Left, pt(l.left(), l.y+0.8*t.Leading()), line)
 		l.y += t.Leading()
 	}
 	sub := joined(", ", s.Copy, by(s.Plan.Author))
@@ -74,7 +74,8 @@ func (l *press) factList() []fact {
 	}
 	list = append(list, fact{"Finished", size})
 	if c, ok := s.Carats(m.VolumeMM3); ok {
-		list = append(list, fact{"Weight", fmt.Sprintf("%.2f ct (%.1f mm³ at %.2f g/cm³)", c, m.VolumeMM3, s.Material.Density)})
+		list = append(list, fact{"Weight",
+			fmt.Sprintf("%.2f ct (%.1f mm³ at %.2f g/cm³)", c, m.VolumeMM3, s.Material.Density)})
 	} else {
 		list = append(list, fact{"Weight", fmt.Sprintf("%.1f mm³; the material's density is not known", m.VolumeMM3)})
 	}
@@ -127,7 +128,8 @@ func (s *Sheet) roughWords() string {
 	volume, words := s.Rough.VolumeMM3, s.Rough.Words
 	if volume == 0 {
 		volume = box[0] * box[1] * box[2]
-		words = joined("; ", words, fmt.Sprintf("smallest box with %.2f mm all round %s", s.Rough.AllowanceMM, sizes(box[0], box[1], box[2])))
+		smallest := fmt.Sprintf("smallest box with %.2f mm all round %s", s.Rough.AllowanceMM, sizes(box[0], box[1], box[2]))
+		words = joined("; ", words, smallest)
 	}
 	if c, ok := s.Carats(volume); ok {
 		words += fmt.Sprintf(", %.2f ct", c)
@@ -208,10 +210,10 @@ func (l *press) threeViews() {
 		{side, func() (mgl64.Vec3, mgl64.Vec3) { return fromSide(0) }},
 	} {
 		right, up := look.axes()
-		at := drawing.Point{X: x + cell(look.words)/2, Y: middle}
+		at := pt(x+cell(look.words)/2, middle)
 		v := fit(stone, right, up, at, 1e9, 1e9, scale)
 		v.solid(l.page, stone, nil, 0.8)
-		l.page.Write(t, pale(), drawing.Middle, drawing.Point{X: at.X, Y: l.y + tall + 2 + t.Leading()}, look.words)
+		l.page.Write(t, pale(), drawing.Middle, pt(at.X, l.y+tall+2+t.Leading()), look.words)
 		x += cell(look.words) + gap
 		if look.words == side {
 			l.heights(&v, at.X+scale*extent[1]/2+1.5)
@@ -248,11 +250,11 @@ func (l *press) heights(v *View, x float64) {
 	for i, b := range bands {
 		top, bottom := v.Point(mgl64.Vec3{0, 0, b.to}).Y, v.Point(mgl64.Vec3{0, 0, b.from}).Y
 		for _, at := range []float64{top, bottom} {
-			l.page.Line(s1, drawing.Point{X: x, Y: at}, drawing.Point{X: x + 2, Y: at})
+			l.page.Line(s1, pt(x, at), pt(x+2, at))
 		}
-		l.page.Line(s1, drawing.Point{X: x + 1, Y: top}, drawing.Point{X: x + 1, Y: bottom})
-		l.page.Line(s1, drawing.Point{X: x + 1, Y: (top + bottom) / 2}, drawing.Point{X: x + 3, Y: y[i]})
-		l.page.Write(t, black(), drawing.Left, drawing.Point{X: x + 3.6, Y: y[i] + t.Height()/2}, b.words)
+		l.page.Line(s1, pt(x+1, top), pt(x+1, bottom))
+		l.page.Line(s1, pt(x+1, (top+bottom)/2), pt(x+3, y[i]))
+		l.page.Write(t, black(), drawing.Left, pt(x+3.6, y[i]+t.Height()/2), b.words)
 	}
 }
 
@@ -284,16 +286,16 @@ func (l *press) maps() {
 	x := l.left()
 	for row, q := range quantities {
 		y := top + t.Leading() + float64(row)*(edge+1.5)
-		l.page.Write(t, pale(), drawing.Left, drawing.Point{X: x, Y: y + edge/2}, q.words)
+		l.page.Write(t, pale(), drawing.Left, pt(x, y+edge/2), q.words)
 		for i := range light.Columns {
 			c := &light.Columns[i]
-			at := drawing.Point{X: x + 14*l.k + float64(i)*(edge+2), Y: y}
+			at := pt(x+14*l.k+float64(i)*(edge+2), y)
 			l.page.Place(paletted(c.Map.Field(q.q), c.Map.Pixels, q.map_), at, edge, edge)
 			if row == 0 {
-				l.page.Write(t, pale(), drawing.Middle, drawing.Point{X: at.X + edge/2, Y: top + 0.78*t.Leading()}, columnName(c))
+				l.page.Write(t, pale(), drawing.Middle, pt(at.X+edge/2, top+0.78*t.Leading()), columnName(c))
 			}
 		}
-		l.scale(q.map_, drawing.Point{X: x + 14*l.k + columns*(edge+2), Y: y}, edge)
+		l.scale(q.map_, pt(x+14*l.k+columns*(edge+2), y), edge)
 	}
 	if beside {
 		l.ledger(x+14*l.k+columns*(edge+2)+11*l.k, top)
@@ -323,8 +325,8 @@ func (l *press) scale(m *picture.ColourMap, at drawing.Point, height float64) {
 	}
 	l.page.Place(img, at, 2.2, height)
 	t := l.body()
-	l.page.Write(t, pale(), drawing.Left, drawing.Point{X: at.X + 3, Y: at.Y + t.Height()}, "1")
-	l.page.Write(t, pale(), drawing.Left, drawing.Point{X: at.X + 3, Y: at.Y + height}, "0")
+	l.page.Write(t, pale(), drawing.Left, pt(at.X+3, at.Y+t.Height()), "1")
+	l.page.Write(t, pale(), drawing.Left, pt(at.X+3, at.Y+height), "0")
 }
 
 // palette returns a colour map in 255 steps, with white paper for what lies outside.
@@ -359,9 +361,9 @@ func (l *press) ledger(x, y float64) {
 	t := l.body()
 	wide := (l.right() - x - 25*l.k) / float64(len(light.Columns))
 	row := func(name string, cell func(c *trace.Column) string, t drawing.Type) {
-		l.page.Write(l.body(), black(), drawing.Left, drawing.Point{X: x, Y: y + 0.78*t.Leading()}, name)
+		l.page.Write(l.body(), black(), drawing.Left, pt(x, y+0.78*t.Leading()), name)
 		for i := range light.Columns {
-			l.page.Write(t, black(), drawing.Right, drawing.Point{X: x + 25*l.k + wide*float64(i+1), Y: y + 0.78*t.Leading()}, cell(&light.Columns[i]))
+			l.page.Write(t, black(), drawing.Right, pt(x+25*l.k+wide*float64(i+1), y+0.78*t.Leading()), cell(&light.Columns[i]))
 		}
 		y += t.Leading()
 	}
@@ -380,7 +382,8 @@ func (l *press) ledger(x, y float64) {
 	for i := range light.Columns {
 		worst = max(worst, light.Columns[i].StandardError.Max())
 	}
-	note := fmt.Sprintf("shares of a viewing ray, ± %.3f; head of %s° in the way", math.Ceil(worst*1000)/1000, trimmed(l.sheet.HeadDeg, 1))
+	note := fmt.Sprintf("shares of a viewing ray, ± %.3f; head of %s° in the way",
+		math.Ceil(worst*1000)/1000, trimmed(l.sheet.HeadDeg, 1))
 	l.lines(t, pale(), x, y, l.right()-x, note)
 }
 
@@ -393,8 +396,8 @@ func (l *press) tolerance() {
 	var words []string
 	tier, far := s.longest()
 	if tier != "" {
-		words = append(words, fmt.Sprintf("An angle wrong by %.1f° moves the far end of the longest facet (%s, %.2f mm) by %.3f mm; a gap of %.2f mm shows.",
-			toleranceAngle.Degrees(), tier, far, far*math.Tan(toleranceAngle.Radians()), facets.VisibleGap))
+		words = append(words, fmt.Sprintf("An angle wrong by %.1f° moves the far end of the longest facet (%s, %.2f mm) "+
+			"by %.3f mm; a gap of %.2f mm shows.", toleranceAngle.Degrees(), tier, far, far*math.Tan(toleranceAngle.Radians()), facets.VisibleGap))
 	}
 	if w := s.criticalWords(); w != "" && !s.LeaveOut.Angles {
 		words = append(words, w)
@@ -489,7 +492,8 @@ func (l *press) care() {
 		l.item(false, l.left(), l.width(), words)
 	}
 	if len(m.Cautions) == 0 {
-		l.item(false, l.left(), l.width(), "Nothing is known of this material's own dangers: ask its seller for a safety data sheet before cutting it.")
+		l.item(false, l.left(), l.width(),
+			"Nothing is known of this material's own dangers: ask its seller for a safety data sheet before cutting it.")
 	}
 	if m.Toughness != "" {
 		l.item(false, l.left(), l.width(), "How it bears work: "+m.Toughness)

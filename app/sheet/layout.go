@@ -56,6 +56,9 @@ func (l *press) angle() drawing.Type  { return drawing.Type{Size: 15 * l.k, Bold
 func (l *press) head() drawing.Type   { return drawing.Type{Size: 12 * l.k, Bold: true} }
 func (l *press) title() drawing.Type  { return drawing.Type{Size: 17 * l.k, Bold: true} }
 
+// pt is a point on paper, mm.
+func pt(x, y float64) drawing.Point { return drawing.Point{X: x, Y: y} }
+
 // pale is the ink of what is not read at the lap.
 func pale() drawing.Ink { return drawing.Grey(0x50) }
 
@@ -108,7 +111,7 @@ func (l *press) heading(words string) {
 	_, missing := drawing.Clean(words)
 	l.lacking = l.lacking || missing
 	l.y += l.head().Height()
-	l.page.Write(l.head(), black(), drawing.Left, drawing.Point{X: l.left(), Y: l.y}, l.head().Cut(words, l.width()))
+	l.page.Write(l.head(), black(), drawing.Left, pt(l.left(), l.y), l.head().Cut(words, l.width()))
 	l.y += 2.2 * l.k
 	l.rule(l.y)
 	l.y += 2.5 * l.k
@@ -120,7 +123,7 @@ func (l *press) banner(words string) {
 	lines := t.Wrap(words, l.width()-6)
 	height := float64(len(lines))*t.Leading() + 3
 	l.page.Rectangle(drawing.Style{Fill: drawing.Grey(0xe6), Stroke: black(), Width: medium},
-		drawing.Point{X: l.left(), Y: l.y}, l.width(), height)
+		pt(l.left(), l.y), l.width(), height)
 	for i, line := range lines {
 		l.say(t, black(), l.left()+3, l.y+1.5+t.Leading()*(float64(i)+0.8), line)
 	}
@@ -129,7 +132,7 @@ func (l *press) banner(words string) {
 
 // rule draws a line across the page.
 func (l *press) rule(y float64) {
-	l.page.Line(drawing.Style{Stroke: black(), Width: medium}, drawing.Point{X: l.left(), Y: y}, drawing.Point{X: l.right(), Y: y})
+	l.page.Line(drawing.Style{Stroke: black(), Width: medium}, pt(l.left(), y), pt(l.right(), y))
 }
 
 // need begins a further page where less than the given height is free, and reports
@@ -150,7 +153,7 @@ func (l *press) need(height float64) bool {
 func (l *press) say(t drawing.Type, ink drawing.Ink, x, y float64, words string) float64 {
 	_, missing := drawing.Clean(words)
 	l.lacking = l.lacking || missing
-	return l.page.Write(t, ink, drawing.Left, drawing.Point{X: x, Y: y}, words)
+	return l.page.Write(t, ink, drawing.Left, pt(x, y), words)
 }
 
 // lines sets a text in a column and returns its height.
@@ -159,7 +162,7 @@ func (l *press) lines(t drawing.Type, ink drawing.Ink, x, y, width float64, word
 	l.lacking = l.lacking || missing
 	wrapped := t.Wrap(words, width)
 	for i, line := range wrapped {
-		l.page.Write(t, ink, drawing.Left, drawing.Point{X: x, Y: y + t.Leading()*(float64(i)+0.78)}, line)
+		l.page.Write(t, ink, drawing.Left, pt(x, y+t.Leading()*(float64(i)+0.78)), line)
 	}
 	return float64(len(wrapped)) * t.Leading()
 }
@@ -210,7 +213,7 @@ func (l *press) item(tick bool, x, width float64, words string) {
 	if tick {
 		l.box(x, l.y+0.35*l.k, 3.1*l.k)
 	} else {
-		l.page.Circle(drawing.Style{Fill: black()}, drawing.Point{X: x + 1.6*l.k, Y: l.y + 0.55*t.Leading()}, 0.45*l.k)
+		l.page.Circle(drawing.Style{Fill: black()}, pt(x+1.6*l.k, l.y+0.55*t.Leading()), 0.45*l.k)
 	}
 	l.lines(t, black(), x+indent, l.y, width-indent, words)
 	l.y += height + 1.1*l.k
@@ -265,14 +268,14 @@ func (l *press) whole(part func()) {
 
 // box draws a box to tick.
 func (l *press) box(x, y, edge float64) {
-	l.page.Rectangle(drawing.Style{Stroke: black(), Width: medium}, drawing.Point{X: x, Y: y}, edge, edge)
+	l.page.Rectangle(drawing.Style{Stroke: black(), Width: medium}, pt(x, y), edge, edge)
 }
 
 // ruler draws a check ruler of 50 mm.
 func (l *press) ruler(x, y float64) {
 	s := drawing.Style{Stroke: black(), Width: thin}
 	const long = 50
-	l.page.Line(s, drawing.Point{X: x, Y: y}, drawing.Point{X: x + long, Y: y})
+	l.page.Line(s, pt(x, y), pt(x+long, y))
 	for mm := 0; mm <= long; mm++ {
 		tick := 1.2
 		switch {
@@ -281,7 +284,7 @@ func (l *press) ruler(x, y float64) {
 		case mm%5 == 0:
 			tick = 2
 		}
-		l.page.Line(s, drawing.Point{X: x + float64(mm), Y: y}, drawing.Point{X: x + float64(mm), Y: y - tick})
+		l.page.Line(s, pt(x+float64(mm), y), pt(x+float64(mm), y-tick))
 	}
 	t := l.body()
 	words := "50 mm: measure it; printed at 100 %, sizes on paper are true"
@@ -295,10 +298,10 @@ func (l *press) foot() {
 	for i, page := range l.pages {
 		y := l.sheet.Paper.Height - l.margin()
 		page.Line(drawing.Style{Stroke: drawing.Grey(0x90), Width: thin},
-			drawing.Point{X: l.left(), Y: y - t.Leading()}, drawing.Point{X: l.right(), Y: y - t.Leading()})
+			pt(l.left(), y-t.Leading()), pt(l.right(), y-t.Leading()))
 		of := fmt.Sprintf("page %d of %d", i+1, len(l.pages))
-		page.Write(t, pale(), drawing.Right, drawing.Point{X: l.right(), Y: y}, of)
+		page.Write(t, pale(), drawing.Right, pt(l.right(), y), of)
 		name := joined(", ", l.sheet.Plan.Name, l.sheet.Material.Name, l.sheet.Copy)
-		page.Write(t, pale(), drawing.Left, drawing.Point{X: l.left(), Y: y}, t.Cut(name, l.width()-t.Width(of)-4))
+		page.Write(t, pale(), drawing.Left, pt(l.left(), y), t.Cut(name, l.width()-t.Width(of)-4))
 	}
 }

@@ -38,7 +38,10 @@ func Trace(ctx context.Context, job *Job, media []*gems.Material, report func(do
 	if err != nil {
 		return err
 	}
-	settings := trace.Settings{Head: facets.Angle(job.HeadDeg) * facets.Degree, Pixels: lightPixels, Error: lightError, Seed: 1}
+	settings := trace.Settings{
+		Head: facets.Angle(job.HeadDeg) * facets.Degree, Pixels: lightPixels, Error: lightError, Seed: 1,
+	}
+	scene := trace.Scene{Stone: stone, Material: job.Material, Surroundings: trace.Around(media...)}
 	wrong := miscutPlans(job.Plan)
 	weight := 1 / (1 + float64(len(wrong))/float64(len(media)))
 	tell := func(done float64) {
@@ -46,8 +49,7 @@ func Trace(ctx context.Context, job *Job, media []*gems.Material, report func(do
 			report(done)
 		}
 	}
-	job.Light, err = trace.Run(ctx, trace.Scene{Stone: stone, Material: job.Material, Surroundings: trace.Around(media...)}, settings,
-		func(r *trace.Result) { tell(weight * r.Done) })
+	job.Light, err = trace.Run(ctx, scene, settings, func(r *trace.Result) { tell(weight * r.Done) })
 	if err != nil {
 		return err
 	}
@@ -57,11 +59,14 @@ func Trace(ctx context.Context, job *Job, media []*gems.Material, report func(do
 		if err != nil {
 			continue // its corners do not come together at these angles: there is no stone to look at
 		}
-		r, err := trace.Run(ctx, trace.Scene{Stone: stone, Material: job.Material, Surroundings: trace.Around(media[0])}, settings, nil)
+		scene := trace.Scene{Stone: stone, Material: job.Material, Surroundings: trace.Around(media[0])}
+		r, err := trace.Run(ctx, scene, settings, nil)
 		if err != nil {
 			return err
 		}
-		job.Miscuts = append(job.Miscuts, Miscut{Side: m.side, By: m.by, Return: r.Columns[0].Ledger.Returned, Error: r.Columns[0].StandardError.Returned})
+		c := &r.Columns[0]
+		job.Miscuts = append(job.Miscuts,
+			Miscut{Side: m.side, By: m.by, Return: c.Ledger.Returned, Error: c.StandardError.Returned})
 		tell(weight + (1-weight)*float64(i+1)/float64(len(wrong)))
 	}
 	tell(1)

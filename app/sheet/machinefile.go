@@ -58,9 +58,11 @@ func ReadMachine(r io.Reader, file string) (Machine, error) {
 	data, err := io.ReadAll(io.LimitReader(r, mostMachineBytes+1))
 	switch {
 	case err != nil:
-		return Machine{}, facets.Faults{{File: file, Why: "it cannot be read: " + err.Error(), Remedy: "check the disk and try again"}}
+		return Machine{}, facets.Faults{{File: file, Why: "it cannot be read: " + err.Error(),
+			Remedy: "check the disk and try again"}}
 	case len(data) > mostMachineBytes:
-		return Machine{}, facets.Faults{{File: file, Why: "the file is larger than 64 KiB", Remedy: "a machine is described in a dozen lines"}}
+		return Machine{}, facets.Faults{{File: file, Why: "the file is larger than 64 KiB",
+			Remedy: "a machine is described in a dozen lines"}}
 	}
 	var f machineFile
 	var faults facets.Faults
@@ -138,7 +140,9 @@ func (f *machineFile) faults(file string, data []byte) facets.Faults {
 				line = i + 1
 			}
 		}
-		all = append(all, &facets.Fault{File: file, Line: line, Field: field, Got: fmt.Sprint(got), Why: why, Remedy: remedy})
+		all = append(all, &facets.Fault{
+			File: file, Line: line, Field: field, Got: fmt.Sprint(got), Why: why, Remedy: remedy,
+		})
 	}
 	within := func(field string, v, least, most float64, unit string) {
 		if !(v >= least && v <= most) {
@@ -216,7 +220,8 @@ func (m Machines) Open(name string) (Machine, error) {
 			Remedy: "write the file; its lines are\n" + MachineTemplate}}
 	}
 	if err != nil {
-		return Machine{}, facets.Faults{{File: path, Why: "it cannot be opened: " + err.Error(), Remedy: "check the name and the permissions"}}
+		return Machine{}, facets.Faults{{File: path, Why: "it cannot be opened: " + err.Error(),
+			Remedy: "check the name and the permissions"}}
 	}
 	defer f.Close()
 	return ReadMachine(f, path)

@@ -103,14 +103,14 @@ func (l *press) mind() {
 		}
 	}
 	l.subhead("What this sheet is", 2*l.body().Leading())
-	l.paragraph(l.body(), black(), "Shape and light are computed from the plan. The maps are a model: they grade no stone and replace no laboratory. "+
-		"Not modelled: inclusions, haze, colour zones, fluorescence, fracture filling.")
+	l.paragraph(l.body(), black(), "Shape and light are computed from the plan. "+
+		"The maps are a model: they grade no stone and replace no laboratory. Not modelled: inclusions, haze, colour zones, fluorescence, fracture filling.")
 	if !s.LeaveOut.Any() {
 		l.paragraph(l.body(), black(), "The plan file travels inside this PDF as an attachment and opens in Pavilight again.")
 	}
 	if l.lacking {
-		l.paragraph(l.body(), black(), fmt.Sprintf("%c stands for a letter that this sheet's typeface does not hold: it has Latin, Greek and Cyrillic. "+
-			"The attached plan keeps the full text.", drawing.Missing))
+		l.paragraph(l.body(), black(), fmt.Sprintf("%c stands for a letter that this sheet's typeface does not hold: "+
+			"it has Latin, Greek and Cyrillic. The attached plan keeps the full text.", drawing.Missing))
 	}
 	l.y += 3
 	l.need(14)
@@ -134,8 +134,10 @@ func benchCautions() []string {
 		"Wear eye protection. Keep hair, sleeves, cords and gloves away from moving laps and spindles.",
 		"Cut wet: dust of stones, laps and metal oxides harms the lungs. Wipe up wet, never blow or sweep dry.",
 		"Water and mains: use a residual-current switch and a drip loop, and keep hands dry at plugs and switches.",
-		"Dopping: hot wax and flame burn, adhesives and solvents give off vapour and catch fire. Work aired, away from flame, and cool slowly.",
-		"Polishing powders (cerium, aluminium, chromium, tin and zirconium oxides, diamond): keep them damp, off skin and food, and read their safety data sheets. Laps of lead or with lead need gloves and washed hands.",
+		"Dopping: hot wax and flame burn, adhesives and solvents give off vapour and catch fire. " +
+			"Work aired, away from flame, and cool slowly.",
+		"Polishing powders (cerium, aluminium, chromium, tin and zirconium oxides, diamond): keep them damp, off skin and food, " +
+			"and read their safety data sheets. Laps of lead or with lead need gloves and washed hands.",
 		"Local rules and licensed practice come before anything on this sheet.",
 	}
 }

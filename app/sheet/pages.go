@@ -70,7 +70,7 @@ func (l *press) turn(r *Row) {
 	}
 	t := l.body()
 	height := tall(t, l.width()-14, words) + 3
-	l.page.Rectangle(drawing.Style{Stroke: black(), Width: medium}, drawing.Point{X: l.left(), Y: l.y}, l.width(), height)
+	l.page.Rectangle(drawing.Style{Stroke: black(), Width: medium}, pt(l.left(), l.y), l.width(), height)
 	l.box(l.left()+2, l.y+1.8, 3.1*l.k)
 	l.lines(t, black(), l.left()+8, l.y+1.5, l.width()-14, words)
 	l.y += height + 2.5
@@ -82,7 +82,7 @@ func (l *press) overview(facing facets.Side) {
 	edge := min(0.6*l.width(), 0.42*s.Paper.Height)
 	d := ringDrawing{sheet: s, facing: facing, type_: l.body()}
 	top := l.y
-	scale, left := d.draw(l.page, drawing.Point{X: l.left() + edge/2, Y: top + edge/2}, edge)
+	scale, left := d.draw(l.page, pt(l.left()+edge/2, top+edge/2), edge)
 	x := l.left() + edge + 4
 	width := l.right() - x
 	y := top
@@ -90,14 +90,15 @@ func (l *press) overview(facing facets.Side) {
 	if facing == facets.Pavilion {
 		from = "Seen from below"
 	}
-	y += l.lines(l.body(), pale(), x, y, width, fmt.Sprintf("%s, drawn %s : 1. %s", from, trimmed(scale, 2), l.ringWords(facing, left)))
+	words := fmt.Sprintf("%s, drawn %s : 1. %s", from, trimmed(scale, 2), l.ringWords(facing, left))
+	y += l.lines(l.body(), pale(), x, y, width, words)
 	y += 2
 	y += l.lines(l.strong(), black(), x, y, width, "Sizes")
 	y += 0.5
 	for _, z := range s.Sizes(facing) {
 		value := z.String()
 		h := l.lines(l.body(), black(), x, y, width-l.strong().Width(value)-2, z.What)
-		l.page.Write(l.strong(), black(), drawing.Right, drawing.Point{X: x + width, Y: y + l.body().Leading()*0.78}, value)
+		l.page.Write(l.strong(), black(), drawing.Right, pt(x+width, y+l.body().Leading()*0.78), value)
 		y += h + 0.8
 	}
 	// What is left of the column shows the stone from the side, as it lies to the lap.
@@ -106,11 +107,11 @@ func (l *press) overview(facing facets.Side) {
 		if facing == facets.Pavilion {
 			up, right = up.Mul(-1), right.Mul(-1)
 		}
-		v := fit(s.Solution.Stone, right, up, drawing.Point{X: x + width/2, Y: y + 3 + free/2}, width-2, free-4, 1e9)
+		v := fit(s.Solution.Stone, right, up, pt(x+width/2, y+3+free/2), width-2, free-4, 1e9)
 		v.Scale = roundScale(v.Scale)
 		v.solid(l.page, s.Solution.Stone, nil, 1)
 		v.labels(l.page, s.Solution.Stone, l.body())
-		l.page.Write(l.body(), pale(), drawing.Middle, drawing.Point{X: x + width/2, Y: top + edge - 0.3*l.body().Leading()},
+		l.page.Write(l.body(), pale(), drawing.Middle, pt(x+width/2, top+edge-0.3*l.body().Leading()),
 			fmt.Sprintf("From the side, index %d near, %s : 1", l.nearIndex(facing), trimmed(v.Scale, 2)))
 	}
 	l.y = max(top+edge, y) + 2
@@ -198,7 +199,7 @@ func (l *press) table(rows []Row) {
 		}
 		l.row(c, &part, height)
 		l.y += height
-		l.page.Line(drawing.Style{Stroke: drawing.Grey(0x90), Width: thin}, drawing.Point{X: l.left(), Y: l.y}, drawing.Point{X: l.right(), Y: l.y})
+		l.page.Line(drawing.Style{Stroke: drawing.Grey(0x90), Width: thin}, pt(l.left(), l.y), pt(l.right(), l.y))
 	}
 	l.y += 1.5
 	l.between(rows)
@@ -338,7 +339,7 @@ func (l *press) row(c columns, r *Row, height float64) {
 	}
 	l.say(l.body(), pale(), c.number, first, fmt.Sprint(r.Number))
 	if edge := l.picture(); edge > 0 {
-		l.thumbnail(r, drawing.Point{X: c.picture + edge/2, Y: l.y + min(height, edge+1)/2}, edge-1)
+		l.thumbnail(r, pt(c.picture+edge/2, l.y+min(height, edge+1)/2), edge-1)
 	}
 	on := func(t drawing.Type) float64 { return first - 0.78*t.Leading() } // top of a text whose first line is on it
 	l.lines(l.tier(), black(), c.tier, on(l.tier()), c.angle-c.tier-1, r.Tier.Name)
@@ -368,7 +369,7 @@ func (l *press) row(c columns, r *Row, height float64) {
 
 // blank draws a line to write on.
 func (l *press) blank(x, y, width float64) {
-	l.page.Line(drawing.Style{Stroke: drawing.Grey(0x60), Width: thin}, drawing.Point{X: x, Y: y + 0.6}, drawing.Point{X: x + width, Y: y + 0.6})
+	l.page.Line(drawing.Style{Stroke: drawing.Grey(0x60), Width: thin}, pt(x, y+0.6), pt(x+width, y+0.6))
 }
 
 // thumbnail draws the stone after a step along the axis, the new facets picked out.

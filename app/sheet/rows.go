@@ -157,7 +157,8 @@ func (s *Sheet) stopWords(r *Row, indices bool) string {
 		}
 		return words
 	case facets.StopTable:
-		return fmt.Sprintf("until the table is %.2f mm wide (%.1f %% of the width)", stop.Value*s.Measures.WidthMM, 100*stop.Value)
+		return fmt.Sprintf("until the table is %.2f mm wide (%.1f %% of the width)",
+			stop.Value*s.Measures.WidthMM, 100*stop.Value)
 	case facets.StopCulet:
 		return fmt.Sprintf("until the culet flat is %.2f mm wide", stop.Value*s.Measures.WidthMM)
 	}
@@ -191,7 +192,8 @@ func (s *Sheet) heightWords(r *Row, what string, z float64) string {
 		return fmt.Sprintf("%s%s%.2f mm above the finished girdle's upper line", what, comma, z-g.Max)
 	case r.Facing == facets.Pavilion:
 		top := g.Max + s.Measures.CrownHeightMM
-		return fmt.Sprintf("%s at the girdle line, with %.2f mm or more of rough left to the dop side", what, top-z+s.Rough.AllowanceMM)
+		return fmt.Sprintf("%s at the girdle line, with %.2f mm or more of rough left to the dop side",
+			what, top-z+s.Rough.AllowanceMM)
 	case z > g.Min+same:
 		return fmt.Sprintf("%s%s%.2f mm above the girdle's lower line", what, comma, z-g.Min)
 	default:
@@ -210,7 +212,8 @@ func (s *Sheet) meetWords(r *Row, indices bool) string {
 		corners = append(corners, listed(marks))
 	}
 	where := "the corner of"
-	if len(corners) == 1 && slices.ContainsFunc(r.Tier.Stop.Corners[0], func(m facets.Mark) bool { return m.Tier == facets.AxisName }) {
+	isAxis := func(m facets.Mark) bool { return m.Tier == facets.AxisName }
+	if len(corners) == 1 && slices.ContainsFunc(r.Tier.Stop.Corners[0], isAxis) {
 		where = "where they cross"
 		if r.Tier.Side == facets.Pavilion {
 			where = "the culet point:"

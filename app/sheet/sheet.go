@@ -175,10 +175,12 @@ func (s *Sheet) Notes() []string {
 		}
 	}
 	if between > 0 {
-		notes = append(notes, fmt.Sprintf("%d facets lie between the teeth of the gear of %d; the sheet gives tooth and cheater", between, s.Machine.Gear))
+		notes = append(notes, fmt.Sprintf("%d facets lie between the teeth of the gear of %d; "+
+			"the sheet gives tooth and cheater", between, s.Machine.Gear))
 	}
 	if s.Rough.TooSmall {
-		notes = append(notes, "the plan's rough does not hold the stone along its axes; the steps start from a box around the stone")
+		notes = append(notes, "the plan's rough does not hold the stone along its axes; "+
+			"the steps start from a box around the stone")
 	}
 	return notes
 }

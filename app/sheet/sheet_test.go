@@ -270,7 +270,7 @@ func checkPage(t *testing.T, where string, page *drawing.Page) {
 				left -= w
 			}
 			b := box{m.Words, left, m.At.Y - m.Type.Height(), left + w, m.At.Y}
-			if out(drawing.Point{X: b.left, Y: b.top}) || out(drawing.Point{X: b.right, Y: b.bottom}) {
+			if out(pt(b.left, b.top)) || out(pt(b.right, b.bottom)) {
 				t.Errorf("%s: %q runs off the paper", where, m.Words)
 			}
 			for _, o := range boxes {
@@ -290,12 +290,12 @@ func checkPage(t *testing.T, where string, page *drawing.Page) {
 				}
 			}
 		case *drawing.Circle:
-			if out(drawing.Point{X: m.Centre.X - m.Radius, Y: m.Centre.Y - m.Radius}) ||
-				out(drawing.Point{X: m.Centre.X + m.Radius, Y: m.Centre.Y + m.Radius}) {
+			if out(pt(m.Centre.X-m.Radius, m.Centre.Y-m.Radius)) ||
+				out(pt(m.Centre.X+m.Radius, m.Centre.Y+m.Radius)) {
 				t.Errorf("%s: a circle runs off the paper", where)
 			}
 		case *drawing.Picture:
-			if out(m.At) || out(drawing.Point{X: m.At.X + m.Width, Y: m.At.Y + m.Height}) {
+			if out(m.At) || out(pt(m.At.X+m.Width, m.At.Y+m.Height)) {
 				t.Errorf("%s: a picture runs off the paper", where)
 			}
 		}
@@ -317,7 +317,7 @@ func TestDrawingsAreTheSolid(t *testing.T) {
 			}
 			page := &drawing.Page{Width: 300, Height: 300}
 			d := ringDrawing{sheet: s, facing: side, type_: drawing.Type{Size: 9}}
-			scale, _ := d.draw(page, drawing.Point{X: 150, Y: 150}, 120)
+			scale, _ := d.draw(page, pt(150, 150), 120)
 			var drawn [][]drawing.Point
 			for _, m := range page.Marks {
 				if p, ok := m.(*drawing.Path); ok && p.Closed {
@@ -334,7 +334,7 @@ func TestDrawingsAreTheSolid(t *testing.T) {
 				var want []drawing.Point
 				for _, c := range f.Corners {
 					p := s.Solution.Stone.Corners[c]
-					want = append(want, drawing.Point{X: 150 + scale*toRight*p[1], Y: 150 - scale*p[0]})
+					want = append(want, pt(150+scale*toRight*p[1], 150-scale*p[0]))
 				}
 				if !slices.ContainsFunc(drawn, func(ring []drawing.Point) bool { return near(ring, want, exact) }) {
 					t.Errorf("%s from %v: facet %s at %g is not drawn where it is", name, side, f.Tier, f.Index)
@@ -373,7 +373,7 @@ func TestThePDFIsToScale(t *testing.T) {
 			for part := range strings.FieldsFuncSeq(found[1], func(r rune) bool { return r == 'M' || r == 'L' || r == 'Z' }) {
 				var x, y float64
 				if n, _ := fmt.Sscan(part, &x, &y); n == 2 {
-					ring = append(ring, drawing.Point{X: x * drawing.MMPerPoint, Y: y * drawing.MMPerPoint})
+					ring = append(ring, pt(x*drawing.MMPerPoint, y*drawing.MMPerPoint))
 				}
 			}
 			all = append(all, ring)
@@ -391,7 +391,7 @@ func TestThePDFIsToScale(t *testing.T) {
 	var want []drawing.Point
 	for _, c := range table.Corners {
 		p := stone.Corners[c]
-		want = append(want, drawing.Point{X: -10 * p[1], Y: 10 * p[0]}) // 10 : 1; a PDF's y runs up
+		want = append(want, pt(-10*p[1], 10*p[0])) // 10 : 1; a PDF's y runs up
 	}
 	if !slices.ContainsFunc(paths(3), func(ring []drawing.Point) bool {
 		if len(ring) > len(want) {
@@ -403,7 +403,7 @@ func TestThePDFIsToScale(t *testing.T) {
 		dx, dy := ring[0].X-want[0].X, ring[0].Y-want[0].Y
 		moved := make([]drawing.Point, len(want))
 		for i, p := range want {
-			moved[i] = drawing.Point{X: p.X + dx, Y: p.Y + dy}
+			moved[i] = pt(p.X+dx, p.Y+dy)
 		}
 		return near(ring, moved, 2*exact) // either end of each distance is exact to 0.01 mm
 	}) {

@@ -52,7 +52,8 @@ func (s *Sheet) Sizes(side facets.Side) []Size {
 			return all
 		}
 		all = append(all,
-			Size{What: "rough left above the girdle's lower line, at least", MM: m.DepthMM - m.PavilionDepthMM + s.Rough.AllowanceMM},
+			Size{What: "rough left above the girdle's lower line, at least",
+				MM: m.DepthMM - m.PavilionDepthMM + s.Rough.AllowanceMM},
 			Size{What: "culet to the dop side, at least", MM: m.DepthMM + s.Rough.AllowanceMM},
 		)
 		if m.CuletWidthMM > 0 {

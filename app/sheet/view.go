@@ -25,7 +25,7 @@ func (v *View) toward() mgl64.Vec3 { return v.Right.Cross(v.Up) }
 // Point returns where a point of the stone falls on paper.
 func (v *View) Point(p mgl64.Vec3) drawing.Point {
 	d := p.Sub(v.Origin)
-	return drawing.Point{X: v.At.X + v.Scale*v.Right.Dot(d), Y: v.At.Y - v.Scale*v.Up.Dot(d)}
+	return pt(v.At.X+v.Scale*v.Right.Dot(d), v.At.Y-v.Scale*v.Up.Dot(d))
 }
 
 // The directions of the views. From above and from below index 0 points up the
@@ -159,9 +159,9 @@ func (v *View) labels(p *drawing.Page, stone *facets.Stone, t drawing.Type) (lef
 		at := centroid(points)
 		name := t.Cut(f.Tier, 30)
 		w, h := t.Width(name)/2+0.4, t.Height()/2+0.4
-		if inside(points, drawing.Point{X: at.X - w, Y: at.Y - h}) && inside(points, drawing.Point{X: at.X + w, Y: at.Y - h}) &&
-			inside(points, drawing.Point{X: at.X - w, Y: at.Y + h}) && inside(points, drawing.Point{X: at.X + w, Y: at.Y + h}) {
-			p.Write(t, black(), drawing.Middle, drawing.Point{X: at.X, Y: at.Y + t.Height()/2}, name)
+		if inside(points, pt(at.X-w, at.Y-h)) && inside(points, pt(at.X+w, at.Y-h)) &&
+			inside(points, pt(at.X-w, at.Y+h)) && inside(points, pt(at.X+w, at.Y+h)) {
+			p.Write(t, black(), drawing.Middle, pt(at.X, at.Y+t.Height()/2), name)
 			named[f.Tier] = true
 			places = append(places, written{at, 2 * w})
 		}
@@ -179,8 +179,8 @@ func centroid(ring []drawing.Point) drawing.Point {
 	o := ring[0]
 	var x, y, area float64
 	for i := 1; i+1 < len(ring); i++ {
-		a := drawing.Point{X: ring[i].X - o.X, Y: ring[i].Y - o.Y}
-		b := drawing.Point{X: ring[i+1].X - o.X, Y: ring[i+1].Y - o.Y}
+		a := pt(ring[i].X-o.X, ring[i].Y-o.Y)
+		b := pt(ring[i+1].X-o.X, ring[i+1].Y-o.Y)
 		c := a.X*b.Y - a.Y*b.X
 		area += c
 		x += c * (a.X + b.X) / 3
@@ -189,7 +189,7 @@ func centroid(ring []drawing.Point) drawing.Point {
 	if area == 0 {
 		return o
 	}
-	return drawing.Point{X: o.X + x/area, Y: o.Y + y/area}
+	return pt(o.X+x/area, o.Y+y/area)
 }
 
 // inside reports whether a point lies in a convex polygon of either sense.
@@ -282,7 +282,7 @@ func (d *ringDrawing) callOut(p *drawing.Page, v *View, tier string, radius, edg
 			const steps = 120
 			for k := range steps {
 				sin, cos := math.Sincos(2 * math.Pi * float64(k) / steps)
-				at := drawing.Point{X: v.At.X + r*sin, Y: v.At.Y - r*cos}
+				at := pt(v.At.X+r*sin, v.At.Y-r*cos)
 				length := math.Hypot(at.X-c.X, at.Y-c.Y)
 				if length >= shortest || math.Abs(at.X-v.At.X)+width/2 > edge/2 || math.Abs(at.Y-v.At.Y)+h > edge/2 {
 					continue
@@ -303,8 +303,8 @@ func (d *ringDrawing) callOut(p *drawing.Page, v *View, tier string, radius, edg
 	p.Circle(drawing.Style{Fill: black()}, from, 0.45)
 	end := 1 - h/shortest // the line stops short of the name
 	p.Line(drawing.Style{Stroke: black(), Width: thin}, from,
-		drawing.Point{X: from.X + (to.X-from.X)*end, Y: from.Y + (to.Y-from.Y)*end})
-	p.Write(d.type_, black(), drawing.Middle, drawing.Point{X: to.X, Y: to.Y + h/2}, name)
+		pt(from.X+(to.X-from.X)*end, from.Y+(to.Y-from.Y)*end))
+	p.Write(d.type_, black(), drawing.Middle, pt(to.X, to.Y+h/2), name)
 	return true
 }
 
@@ -332,7 +332,7 @@ func (d *ringDrawing) gear(p *drawing.Page, v *View, radius float64) (taken []wr
 		}
 		sin, cos := math.Sincos(2 * math.Pi * i / float64(m.Gear))
 		dir := mgl64.Vec3{cos, sin, 0}
-		return drawing.Point{X: v.At.X + r*v.Right.Dot(dir), Y: v.At.Y - r*v.Up.Dot(dir)}
+		return pt(v.At.X+r*v.Right.Dot(dir), v.At.Y-r*v.Up.Dot(dir))
 	}
 	tick := func(shown, length, width float64) {
 		p.Line(drawing.Style{Stroke: black(), Width: width}, place(shown, radius), place(shown, radius+length))
@@ -386,7 +386,7 @@ func (d *ringDrawing) gear(p *drawing.Page, v *View, radius float64) (taken []wr
 				continue
 			}
 			taken = append(taken, written{at, width})
-			p.Write(d.type_, black(), drawing.Middle, drawing.Point{X: at.X, Y: at.Y + h/2}, n.words)
+			p.Write(d.type_, black(), drawing.Middle, pt(at.X, at.Y+h/2), n.words)
 			break
 		}
 	}
