@@ -17,7 +17,8 @@ import (
 //	settle  come back to the plane of any of the list; who comes no nearer has arrived
 //	mirror  move those who have arrived to their exits and turn them
 //	split   part their light into what goes through and what stays
-//	tally   put down what goes through
+//	tally   put down what goes through in the rays' ledgers
+//	bin     and in the bins of the angle from the eye
 //
 // Each of these is one short pass over all rays in flight, so that the processor works
 // on several groups of eight while others wait for memory. A ray that has not arrived,
@@ -73,6 +74,9 @@ func splitPolarised(t *tables, f *flight)
 
 //go:noescape
 func tally(t *tables, f *flight)
+
+//go:noescape
+func bin(t *tables, f *flight)
 
 // hasVectors reports whether this processor, and the system for it, has what the
 // passes are written in.

@@ -13,61 +13,61 @@ TEXT ·aim(SB), NOSPLIT, $0-16
 	MOVQ tables_busy+0(AX), DX
 
 next:
-	VMOVUPS     group_s+0(CX), Y0
-	VMOVUPS     group_x+0(CX), Y1
-	VFMADD231PS group_dx+0(CX), Y0, Y1
-	VMOVUPS     group_y+0(CX), Y2
-	VFMADD231PS group_dy+0(CX), Y0, Y2
-	VMOVUPS     group_z+0(CX), Y3
-	VFMADD231PS group_dz+0(CX), Y0, Y3
-	VANDPS      magnitude<>+0(SB), Y1, Y0
-	VANDPS      magnitude<>+0(SB), Y2, Y4
-	VADDPS      Y4, Y0, Y0
-	VANDPS      magnitude<>+0(SB), Y3, Y4
-	VADDPS      Y4, Y0, Y0
-	VMOVUPS     f427ffffc<>+0(SB), Y4
-	VDIVPS      Y0, Y4, Y0
-	VMOVUPS     f42800000<>+0(SB), Y4
-	VMOVUPS     f42800000<>+0(SB), Y5
-	VFMADD231PS Y0, Y1, Y4
-	VFMADD231PS Y0, Y2, Y5
-	VCVTTPS2DQ  Y4, Y0
-	VCVTTPS2DQ  Y5, Y1
-	VPSLLD      $0x07, Y1, Y1
-	VPADDD      Y1, Y0, Y0
-	VPSRLD      $0x11, Y3, Y1
-	VPAND       lower<>+0(SB), Y1, Y1
-	VPADDD      Y1, Y0, Y0
-	VPAND       inTable<>+0(SB), Y0, Y0
-	VMOVUPS     Y0, group_list+0(CX)
-	MOVQ        tables_cells+0(AX), BX
-	MOVL        group_list+0(CX), SI
-	MOVWLZX     (BX)(SI*2), SI
-	MOVL        SI, group_list+0(CX)
-	MOVL        group_list+4(CX), SI
-	MOVWLZX     (BX)(SI*2), SI
-	MOVL        SI, group_list+4(CX)
-	MOVL        group_list+8(CX), SI
-	MOVWLZX     (BX)(SI*2), SI
-	MOVL        SI, group_list+8(CX)
-	MOVL        group_list+12(CX), SI
-	MOVWLZX     (BX)(SI*2), SI
-	MOVL        SI, group_list+12(CX)
-	MOVL        group_list+16(CX), SI
-	MOVWLZX     (BX)(SI*2), SI
-	MOVL        SI, group_list+16(CX)
-	MOVL        group_list+20(CX), SI
-	MOVWLZX     (BX)(SI*2), SI
-	MOVL        SI, group_list+20(CX)
-	MOVL        group_list+24(CX), SI
-	MOVWLZX     (BX)(SI*2), SI
-	MOVL        SI, group_list+24(CX)
-	MOVL        group_list+28(CX), SI
-	MOVWLZX     (BX)(SI*2), SI
-	MOVL        SI, group_list+28(CX)
-	LEAQ        group__size+0(CX), CX
-	DECQ        DX
-	JNE         next
+	VMOVUPS      group_s+0(CX), Y0
+	VMOVUPS      group_x+0(CX), Y1
+	VFMADD231PS  group_dx+0(CX), Y0, Y1
+	VMOVUPS      group_y+0(CX), Y2
+	VFMADD231PS  group_dy+0(CX), Y0, Y2
+	VMOVUPS      group_z+0(CX), Y3
+	VFMADD231PS  group_dz+0(CX), Y0, Y3
+	VANDPS       magnitude<>+0(SB), Y1, Y0
+	VANDPS       magnitude<>+0(SB), Y2, Y4
+	VADDPS       Y4, Y0, Y0
+	VANDPS       magnitude<>+0(SB), Y3, Y4
+	VADDPS       Y4, Y0, Y0
+	VMOVUPS      f427ffffc<>+0(SB), Y4
+	VDIVPS       Y0, Y4, Y0
+	VMOVUPS      f42800000<>+0(SB), Y4
+	VMOVUPS      f42800000<>+0(SB), Y5
+	VFMADD231PS  Y0, Y1, Y4
+	VFMADD231PS  Y0, Y2, Y5
+	VCVTTPS2DQ   Y4, Y0
+	VCVTTPS2DQ   Y5, Y1
+	VPSLLD       $0x07, Y1, Y1
+	VPADDD       Y1, Y0, Y0
+	VPSRLD       $0x11, Y3, Y1
+	VPAND        lower<>+0(SB), Y1, Y1
+	VPADDD       Y1, Y0, Y0
+	VPAND        inTable<>+0(SB), Y0, Y0
+	MOVQ         tables_cells+0(AX), BX
+	VEXTRACTI128 $0x01, Y0, X1
+	VPEXTRD      $0x00, X0, SI
+	MOVWLZX      (BX)(SI*2), SI
+	MOVL         SI, group_list+0(CX)
+	VPEXTRD      $0x01, X0, SI
+	MOVWLZX      (BX)(SI*2), SI
+	MOVL         SI, group_list+4(CX)
+	VPEXTRD      $0x02, X0, SI
+	MOVWLZX      (BX)(SI*2), SI
+	MOVL         SI, group_list+8(CX)
+	VPEXTRD      $0x03, X0, SI
+	MOVWLZX      (BX)(SI*2), SI
+	MOVL         SI, group_list+12(CX)
+	VPEXTRD      $0x00, X1, SI
+	MOVWLZX      (BX)(SI*2), SI
+	MOVL         SI, group_list+16(CX)
+	VPEXTRD      $0x01, X1, SI
+	MOVWLZX      (BX)(SI*2), SI
+	MOVL         SI, group_list+20(CX)
+	VPEXTRD      $0x02, X1, SI
+	MOVWLZX      (BX)(SI*2), SI
+	MOVL         SI, group_list+24(CX)
+	VPEXTRD      $0x03, X1, SI
+	MOVWLZX      (BX)(SI*2), SI
+	MOVL         SI, group_list+28(CX)
+	LEAQ         group__size+0(CX), CX
+	DECQ         DX
+	JNE          next
 	VZEROUPPER
 	RET
 
@@ -900,109 +900,127 @@ next:
 	RET
 
 // func tally(t uintptr, f uintptr)
-// Requires: AVX, AVX2, FMA3
+// Requires: AVX, AVX2
 TEXT ·tally(SB), NOSPLIT, $0-16
 	// Put down where the light goes that has gone through.
 	MOVQ t+0(FP), AX
 	MOVQ f+8(FP), CX
 	LEAQ flight_groups+0(CX), DX
-	MOVQ tables_busy+0(AX), BX
+	MOVQ tables_busy+0(AX), AX
 
 next:
-	VMOVUPS      group_through+0(DX), Y0
-	VMOVUPS      group_up+0(DX), Y1
-	VCMPPS       $0x12, f00000000<>+0(SB), Y1, Y2
-	VCMPPS       $0x1e, flight_headCos+0(CX), Y1, Y3
-	VANDPS       Y0, Y2, Y4
-	VADDPS       group_leaked+0(DX), Y4, Y4
-	VMOVUPS      Y4, group_leaked+0(DX)
-	VANDPS       Y0, Y3, Y4
-	VADDPS       group_head+0(DX), Y4, Y4
-	VMOVUPS      Y4, group_head+0(DX)
-	VORPS        Y3, Y2, Y3
-	VANDNPS      Y0, Y3, Y3
-	VADDPS       group_returned+0(DX), Y3, Y3
-	VMOVUPS      Y3, group_returned+0(DX)
-	VMOVUPS      flight_pavilion+0(CX), Y3
-	VPCMPGTD     group_facet+0(DX), Y3, Y3
-	VANDPS       group_arrived+0(DX), Y3, Y3
-	VANDPS       group_unmet+0(DX), Y3, Y3
-	VANDPS       Y2, Y3, Y4
-	VCMPPS       $0x1e, f3f000000<>+0(SB), Y0, Y5
-	VANDPS       Y5, Y4, Y4
-	VORPS        group_windowed+0(DX), Y4, Y4
-	VMOVUPS      Y4, group_windowed+0(DX)
-	VANDNPS      group_unmet+0(DX), Y3, Y3
-	VMOVUPS      Y3, group_unmet+0(DX)
-	VANDNPS      Y0, Y2, Y0
-	VMAXPS       f00000000<>+0(SB), Y1, Y1
-	VMINPS       f3f800000<>+0(SB), Y1, Y1
-	VMOVUPS      fbaa57a2c<>+0(SB), Y2
-	VMOVUPS      f3bda90c5<>+0(SB), Y3
-	VFMADD231PS  Y1, Y2, Y3
-	VMOVUPS      fbc8bfc66<>+0(SB), Y2
-	VFMADD231PS  Y1, Y3, Y2
-	VMOVUPS      f3cfd10f8<>+0(SB), Y3
-	VFMADD231PS  Y1, Y2, Y3
-	VMOVUPS      fbd4d8392<>+0(SB), Y2
-	VFMADD231PS  Y1, Y3, Y2
-	VMOVUPS      f3db63a9e<>+0(SB), Y3
-	VFMADD231PS  Y1, Y2, Y3
-	VMOVUPS      fbe5bbfca<>+0(SB), Y2
-	VFMADD231PS  Y1, Y3, Y2
-	VMOVUPS      f3fc90fda<>+0(SB), Y3
-	VFMADD231PS  Y1, Y2, Y3
-	VMOVUPS      f3f800000<>+0(SB), Y2
-	VSUBPS       Y1, Y2, Y1
-	VSQRTPS      Y1, Y1
-	VMULPS       Y1, Y3, Y1
-	VMULPS       f413758b4<>+0(SB), Y1, Y1
-	VCVTTPS2DQ   Y1, Y1
-	VPMINSD      lastBin<>+0(SB), Y1, Y1
-	VPSLLD       $0x03, Y1, Y1
-	VPADDD       group_bins+0(DX), Y1, Y1
-	VMOVUPS      Y1, group_bin+0(DX)
-	MOVQ         tables_bins+0(AX), SI
-	VEXTRACTF128 $0x00, Y0, X1
-	VCVTPS2PD    X1, Y1
-	VMOVUPS      Y1, group_wide+0(DX)
-	VEXTRACTF128 $0x01, Y0, X0
-	VCVTPS2PD    X0, Y1
-	VMOVUPS      Y1, group_wide+32(DX)
-	MOVL         group_bin+0(DX), DI
-	VMOVSD       (SI)(DI*1), X0
-	VADDSD       group_wide+0(DX), X0, X0
-	VMOVSD       X0, (SI)(DI*1)
-	MOVL         group_bin+4(DX), DI
-	VMOVSD       (SI)(DI*1), X0
-	VADDSD       group_wide+8(DX), X0, X0
-	VMOVSD       X0, (SI)(DI*1)
-	MOVL         group_bin+8(DX), DI
-	VMOVSD       (SI)(DI*1), X0
-	VADDSD       group_wide+16(DX), X0, X0
-	VMOVSD       X0, (SI)(DI*1)
-	MOVL         group_bin+12(DX), DI
-	VMOVSD       (SI)(DI*1), X0
-	VADDSD       group_wide+24(DX), X0, X0
-	VMOVSD       X0, (SI)(DI*1)
-	MOVL         group_bin+16(DX), DI
-	VMOVSD       (SI)(DI*1), X0
-	VADDSD       group_wide+32(DX), X0, X0
-	VMOVSD       X0, (SI)(DI*1)
-	MOVL         group_bin+20(DX), DI
-	VMOVSD       (SI)(DI*1), X0
-	VADDSD       group_wide+40(DX), X0, X0
-	VMOVSD       X0, (SI)(DI*1)
-	MOVL         group_bin+24(DX), DI
-	VMOVSD       (SI)(DI*1), X0
-	VADDSD       group_wide+48(DX), X0, X0
-	VMOVSD       X0, (SI)(DI*1)
-	MOVL         group_bin+28(DX), DI
-	VMOVSD       (SI)(DI*1), X0
-	VADDSD       group_wide+56(DX), X0, X0
-	VMOVSD       X0, (SI)(DI*1)
-	LEAQ         group__size+0(DX), DX
-	DECQ         BX
+	VMOVUPS  group_through+0(DX), Y0
+	VMOVUPS  group_up+0(DX), Y1
+	VCMPPS   $0x12, f00000000<>+0(SB), Y1, Y2
+	VCMPPS   $0x1e, flight_headCos+0(CX), Y1, Y1
+	VANDPS   Y0, Y2, Y3
+	VADDPS   group_leaked+0(DX), Y3, Y3
+	VMOVUPS  Y3, group_leaked+0(DX)
+	VANDPS   Y0, Y1, Y3
+	VADDPS   group_head+0(DX), Y3, Y3
+	VMOVUPS  Y3, group_head+0(DX)
+	VORPS    Y1, Y2, Y1
+	VANDNPS  Y0, Y1, Y1
+	VADDPS   group_returned+0(DX), Y1, Y1
+	VMOVUPS  Y1, group_returned+0(DX)
+	VMOVUPS  flight_pavilion+0(CX), Y1
+	VPCMPGTD group_facet+0(DX), Y1, Y1
+	VANDPS   group_arrived+0(DX), Y1, Y1
+	VANDPS   group_unmet+0(DX), Y1, Y1
+	VANDPS   Y2, Y1, Y2
+	VCMPPS   $0x1e, f3f000000<>+0(SB), Y0, Y0
+	VANDPS   Y0, Y2, Y0
+	VORPS    group_windowed+0(DX), Y0, Y0
+	VMOVUPS  Y0, group_windowed+0(DX)
+	VANDNPS  group_unmet+0(DX), Y1, Y0
+	VMOVUPS  Y0, group_unmet+0(DX)
+	LEAQ     group__size+0(DX), DX
+	DECQ     AX
+	JNE      next
+	VZEROUPPER
+	RET
+
+// func bin(t uintptr, f uintptr)
+// Requires: AVX, AVX2, FMA3
+TEXT ·bin(SB), NOSPLIT, $0-16
+	// Add what leaves upward to the bins by angle from the eye.
+	MOVQ t+0(FP), AX
+	MOVQ f+8(FP), CX
+	LEAQ flight_groups+0(CX), CX
+	MOVQ tables_busy+0(AX), DX
+
+next:
+	VMOVUPS      group_up+0(CX), Y0
+	VCMPPS       $0x1e, f00000000<>+0(SB), Y0, Y1
+	VANDPS       group_through+0(CX), Y1, Y1
+	VEXTRACTF128 $0x00, Y1, X2
+	VCVTPS2PD    X2, Y2
+	VMOVUPS      Y2, group_wide+0(CX)
+	VEXTRACTF128 $0x01, Y1, X1
+	VCVTPS2PD    X1, Y2
+	VMOVUPS      Y2, group_wide+32(CX)
+	VMAXPS       f00000000<>+0(SB), Y0, Y0
+	VMINPS       f3f800000<>+0(SB), Y0, Y0
+	VMOVUPS      fbaa57a2c<>+0(SB), Y1
+	VMOVUPS      f3bda90c5<>+0(SB), Y2
+	VFMADD231PS  Y0, Y1, Y2
+	VMOVUPS      fbc8bfc66<>+0(SB), Y1
+	VFMADD231PS  Y0, Y2, Y1
+	VMOVUPS      f3cfd10f8<>+0(SB), Y2
+	VFMADD231PS  Y0, Y1, Y2
+	VMOVUPS      fbd4d8392<>+0(SB), Y1
+	VFMADD231PS  Y0, Y2, Y1
+	VMOVUPS      f3db63a9e<>+0(SB), Y2
+	VFMADD231PS  Y0, Y1, Y2
+	VMOVUPS      fbe5bbfca<>+0(SB), Y1
+	VFMADD231PS  Y0, Y2, Y1
+	VMOVUPS      f3fc90fda<>+0(SB), Y2
+	VFMADD231PS  Y0, Y1, Y2
+	VMOVUPS      f3f800000<>+0(SB), Y1
+	VSUBPS       Y0, Y1, Y0
+	VSQRTPS      Y0, Y0
+	VMULPS       Y0, Y2, Y0
+	VMULPS       f413758b4<>+0(SB), Y0, Y0
+	VCVTTPS2DQ   Y0, Y0
+	VPMINSD      lastBin<>+0(SB), Y0, Y0
+	MOVQ         tables_bins+0(AX), BX
+	VPSLLD       $0x03, Y0, Y0
+	VPADDD       group_bins+0(CX), Y0, Y1
+	VEXTRACTI128 $0x01, Y1, X2
+	VPEXTRD      $0x00, X1, SI
+	VMOVSD       (BX)(SI*1), X0
+	VADDSD       group_wide+0(CX), X0, X0
+	VMOVSD       X0, (BX)(SI*1)
+	VPEXTRD      $0x01, X1, SI
+	VMOVSD       (BX)(SI*1), X0
+	VADDSD       group_wide+8(CX), X0, X0
+	VMOVSD       X0, (BX)(SI*1)
+	VPEXTRD      $0x02, X1, SI
+	VMOVSD       (BX)(SI*1), X0
+	VADDSD       group_wide+16(CX), X0, X0
+	VMOVSD       X0, (BX)(SI*1)
+	VPEXTRD      $0x03, X1, SI
+	VMOVSD       (BX)(SI*1), X0
+	VADDSD       group_wide+24(CX), X0, X0
+	VMOVSD       X0, (BX)(SI*1)
+	VPEXTRD      $0x00, X2, SI
+	VMOVSD       (BX)(SI*1), X0
+	VADDSD       group_wide+32(CX), X0, X0
+	VMOVSD       X0, (BX)(SI*1)
+	VPEXTRD      $0x01, X2, SI
+	VMOVSD       (BX)(SI*1), X0
+	VADDSD       group_wide+40(CX), X0, X0
+	VMOVSD       X0, (BX)(SI*1)
+	VPEXTRD      $0x02, X2, SI
+	VMOVSD       (BX)(SI*1), X0
+	VADDSD       group_wide+48(CX), X0, X0
+	VMOVSD       X0, (BX)(SI*1)
+	VPEXTRD      $0x03, X2, SI
+	VMOVSD       (BX)(SI*1), X0
+	VADDSD       group_wide+56(CX), X0, X0
+	VMOVSD       X0, (BX)(SI*1)
+	LEAQ         group__size+0(CX), CX
+	DECQ         DX
 	JNE          next
 	VZEROUPPER
 	RET

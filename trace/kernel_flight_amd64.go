@@ -50,10 +50,9 @@ type group struct {
 	die                    eightInts // of the end-game
 	bins                   eightInts // where the ray's bins stand in tables.bins, in bytes
 
-	bin  eightInts  // scratch
 	wide [8]float64 // scratch
 	over int32      // bit i is set if the path of ray i is over
-	_    [7]int32   // to a whole number of cache lines
+	_    [15]int32  // to a whole number of cache lines
 }
 
 // tables is what the passes look up, and how much of the flight is in use.
@@ -109,6 +108,7 @@ func (k *kernel) follow(rays []ray, out []Ledger, columns []sums) {
 		mirror(in, f)
 		split(in, f)
 		tally(in, f)
+		bin(in, f)
 		e.replace(in.busy)
 	}
 	for c := range e.bins {

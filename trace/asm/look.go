@@ -28,15 +28,13 @@ func aim() {
 		// The lower half of the map begins directions² cells on: the sign's bit, moved.
 		cell = addInt(cell, andInt(right(y[2], 31-2*log2Directions), spread("lower", directions*directions)))
 		// Whatever the numbers are, stay in the table.
-		store(andInt(cell, spread("inTable", 2*directions*directions-1)), ray("list"))
+		cell = andInt(cell, spread("inTable", 2*directions*directions-1))
 
 		cells := address("cells")
-		list := ctx.GP64()
-		for i := range 8 {
-			ctx.MOVL(ray("list").Offset(4*i), list.As32())
-			ctx.MOVWLZX(Mem{Base: cells, Index: list, Scale: 2}, list.As32())
-			ctx.MOVL(list.As32(), ray("list").Offset(4*i))
-		}
+		eachNumber(cell, func(i int, number reg.GPVirtual) {
+			ctx.MOVWLZX(Mem{Base: cells, Index: number, Scale: 2}, number.As32())
+			ctx.MOVL(number.As32(), ray("list").Offset(4*i))
+		})
 	})
 }
 

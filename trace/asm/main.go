@@ -26,6 +26,7 @@ func main() {
 	splitAveraged()
 	splitPolarised()
 	tally()
+	bin()
 	if err := write("../kernel_amd64.s"); err != nil {
 		log.Fatal(err)
 	}

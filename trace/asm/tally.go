@@ -4,10 +4,10 @@ import (
 	"math"
 
 	. "github.com/mmcloughlin/avo/operand"
+	"github.com/mmcloughlin/avo/reg"
 )
 
-// tally puts what goes through a surface down in the ledger of its ray, and in the
-// bins by angle from the eye.
+// tally puts what goes through a surface down in the ledger of its ray.
 func tally() {
 	eachGroup("tally", "Put down where the light goes that has gone through.", func() {
 		through, up := load(ray("through")), load(ray("up"))
@@ -28,34 +28,34 @@ func tally() {
 		seen := and(and(meets, down), compare(through, moreThan, number(0.5)))
 		store(or(seen, ray("windowed")), ray("windowed"))
 		store(without(meets, ray("unmet")), ray("unmet"))
-
-		bin(without(down, through), up)
 	})
 }
 
-// bin adds shares to the bins of 5 degrees of the angle from the eye. Each place in
-// a group and each medium has bins of its own, which the caller adds up.
-func bin(share, up vector) {
-	angle := arcCosine(smaller(larger(up, zero()), one()))
-	k := truncate(mul(angle, number(18/(math.Pi/2))))
-	k = smallerInt(k, spread("lastBin", 17))
-	store(addInt(left(k, 3), ray("bins")), ray("bin"))
+// bin adds what leaves upward to the bins of 5 degrees of the angle from the eye, in
+// float64. Each place in a group and each medium has bins of its own, which the caller
+// adds up.
+func bin() {
+	eachGroup("bin", "Add what leaves upward to the bins by angle from the eye.", func() {
+		up := load(ray("up"))
+		share := and(compare(up, moreThan, zero()), ray("through"))
+		wide := ctx.YMM()
+		for half := range 2 {
+			four := ctx.XMM()
+			ctx.VEXTRACTF128(Imm(uint64(half)), share, four)
+			ctx.VCVTPS2PD(four, wide)
+			store(wide, ray("wide").Offset(32*half))
+		}
 
-	bins, at, sum := ctx.GP64(), ctx.GP64(), ctx.XMM()
-	ctx.MOVQ(table("bins"), bins)
-	wide := ctx.YMM()
-	for half := range 2 {
-		four := ctx.XMM()
-		ctx.VEXTRACTF128(Imm(uint64(half)), share, four)
-		ctx.VCVTPS2PD(four, wide)
-		store(wide, ray("wide").Offset(32*half))
-	}
-	for i := range 8 {
-		ctx.MOVL(ray("bin").Offset(4*i), at.As32())
-		ctx.VMOVSD(Mem{Base: bins, Index: at, Scale: 1}, sum)
-		ctx.VADDSD(ray("wide").Offset(8*i), sum, sum)
-		ctx.VMOVSD(sum, Mem{Base: bins, Index: at, Scale: 1})
-	}
+		angle := arcCosine(smaller(larger(up, zero()), one()))
+		k := smallerInt(truncate(mul(angle, number(18/(math.Pi/2)))), spread("lastBin", 17))
+		bins, sum := address("bins"), ctx.XMM()
+		eachNumber(addInt(left(k, 3), ray("bins")), func(i int, number reg.GPVirtual) {
+			at := Mem{Base: bins, Index: number, Scale: 1}
+			ctx.VMOVSD(at, sum)
+			ctx.VADDSD(ray("wide").Offset(8*i), sum, sum)
+			ctx.VMOVSD(sum, at)
+		})
+	})
 }
 
 // arcCosine is in [0, pi/2] for x in [0, 1], within 2e-8 and rounding. Abramowitz &

@@ -184,6 +184,22 @@ func rows(row func(i int) Mem) (a, b, c, d vector) {
 		three(ctx.VUNPCKLPD, cd01, cd23), three(ctx.VUNPCKHPD, cd01, cd23)
 }
 
+// eachNumber takes the eight numbers out of v, one after the other. That is quicker
+// than to store them and load them again.
+func eachNumber(v vector, use func(i int, number reg.GPVirtual)) {
+	upper := ctx.XMM()
+	ctx.VEXTRACTI128(Imm(1), v, upper)
+	for i := range 8 {
+		four := v.AsX()
+		if i >= 4 {
+			four = upper
+		}
+		number := ctx.GP64()
+		ctx.VPEXTRD(Imm(uint64(i%4)), four, number.As32())
+		use(i, number)
+	}
+}
+
 // eachGroup writes a function that does body for each busy group of a flight.
 func eachGroup(name, doc string, body func()) {
 	ctx.Function(name)
