@@ -354,3 +354,27 @@ func TestLedgerRows(t *testing.T) {
 		t.Error("absorbed light is not told")
 	}
 }
+
+func TestChangesByOtherHandsAreToldOnce(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "x.toml")
+	if err := os.WriteFile(path, []byte("one"), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	d := NewDocument(&facets.Plan{Name: "x"}, path)
+	if got := d.Seen(StampOf(path)); got != Untouched {
+		t.Errorf("an untouched file is told as %v", got)
+	}
+	if err := os.WriteFile(path, []byte("another"), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	if got := d.Seen(StampOf(path)); got != Changed {
+		t.Errorf("a changed file is told as %v", got)
+	}
+	if got := d.Seen(StampOf(path)); got != Untouched {
+		t.Errorf("a change is told twice: %v", got)
+	}
+	os.Remove(path)
+	if got := d.Seen(StampOf(path)); got != Gone || !d.Modified() {
+		t.Errorf("a file that is gone is told as %v, modified %v", got, d.Modified())
+	}
+}

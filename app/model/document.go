@@ -1,7 +1,9 @@
 package model
 
 import (
+	"os"
 	"path/filepath"
+	"time"
 
 	"pavilight/facets"
 )
@@ -12,17 +14,18 @@ type Document struct {
 	Path string // of its file; empty for a plan that has none yet
 
 	history history[*facets.Plan]
+	stamp   Stamp // of the file as it was read or written
 }
 
 // NewDocument returns a document of the plan as it was read from path, or of a
 // bundled plan, which has no file, for an empty path.
 func NewDocument(plan *facets.Plan, path string) *Document {
-	return &Document{Path: path, history: newHistory(plan, true)}
+	return &Document{Path: path, history: newHistory(plan, true), stamp: StampOf(path)}
 }
 
 // recovered returns a document of work that was never saved to path.
 func recovered(plan *facets.Plan, path string) *Document {
-	return &Document{Path: path, history: newHistory(plan, false)}
+	return &Document{Path: path, history: newHistory(plan, false), stamp: StampOf(path)}
 }
 
 // Plan returns the present plan. It must not be changed; see Edit.
@@ -100,7 +103,51 @@ func (d *Document) save(path string) error {
 	if err := writeWhole(path, d.Plan().Write); err != nil {
 		return err
 	}
-	d.Path = path
+	d.Path, d.stamp = path, StampOf(path)
 	d.history.markSaved()
 	return nil
+}
+
+// Stamp tells one state of a file from another; the zero value stands for no file.
+type Stamp struct {
+	changed time.Time
+	bytes   int64
+}
+
+// StampOf returns the stamp of the file at path as it is now.
+func StampOf(path string) Stamp {
+	if path == "" {
+		return Stamp{}
+	}
+	info, err := os.Stat(path)
+	if err != nil {
+		return Stamp{}
+	}
+	return Stamp{info.ModTime(), info.Size()}
+}
+
+// Outside says what happened to the document's file by other hands.
+type Outside int
+
+// What can have happened.
+const (
+	Untouched Outside = iota
+	Changed           // the file holds something else now
+	Gone              // the file is not there any more
+)
+
+// Seen compares the file's stamp as it is now with the one that the document knows,
+// and remembers it, so that each change is told once. A plan whose file is gone
+// counts as modified.
+func (d *Document) Seen(now Stamp) Outside {
+	before := d.stamp
+	d.stamp = now
+	switch {
+	case d.Path == "" || now == before:
+		return Untouched
+	case now == Stamp{}:
+		d.history.saved = -1
+		return Gone
+	}
+	return Changed
 }

@@ -211,8 +211,31 @@ func (w *window) requestClose() {
 	w.unlessUnsaved("leave", w.close)
 }
 
+// close ends the window; what is unsaved is not wanted.
 func (w *window) close() {
+	if w.closed {
+		return
+	}
+	w.closed = true
+	if w.keeper.recovery != nil {
+		w.keeper.recovery.Drop()
+	}
+	w.leave()
+}
+
+// closeKept ends the window without a question; what is unsaved is kept.
+func (w *window) closeKept() {
+	if w.closed {
+		return
+	}
+	w.closed = true
+	w.keepNow()
+	w.leave()
+}
+
+func (w *window) leave() {
 	w.files.keepWindowSize(w.win.Canvas().Size())
+	w.endKeeping()
 	w.bench.Look.Close()
 	w.win.Close()
 }

@@ -7,6 +7,7 @@ package ui
 import (
 	"context"
 	"os"
+	"path/filepath"
 	"time"
 
 	"fyne.io/fyne/v2"
@@ -49,10 +50,17 @@ func Run(ctx context.Context, o Options) error {
 	if err != nil {
 		return err
 	}
-	a.Lifecycle().SetOnStarted(func() { w.started(o.Path) })
-	stop := context.AfterFunc(ctx, func() { post(w.close) })
+	a.Lifecycle().SetOnStarted(func() {
+		w.beginKeeping(filepath.Join(a.Storage().RootURI().Path(), "unsaved"))
+		w.started(o.Path)
+	})
+	stop := context.AfterFunc(ctx, func() { post(w.closeKept) })
 	defer stop()
 	w.win.ShowAndRun()
+	if !w.closed { // a signal ended the toolkit's loop
+		w.keepNow()
+	}
+	w.endKeeping()
 	w.bench.Look.Close()
 	return nil
 }

@@ -33,6 +33,7 @@ func (w *window) started(path string) {
 	w.once("shown")
 	w.enter(lookRoom)
 	w.bench.Begin() // something to look at, also while another plan is read
+	w.offerRecovered()
 	if path != "" {
 		w.open(path)
 		return

@@ -63,6 +63,8 @@ type window struct {
 
 	menu    menus
 	files   fileMemory
+	keeper  keeper
+	closed  bool
 	ledgers throttle
 	stages  map[string]bool
 	asked   map[string]*widget.Button // answers of the question that is open, by their label

@@ -163,7 +163,7 @@ func TestTypedAngleMovesTheMaps(t *testing.T) {
 
 func TestRefusedEntryKeepsThePlan(t *testing.T) {
 	r := newRig(t, testdata.Bundled)
-	for _, text := range []string{"abc", "95", "0", "1e300", strings.Repeat("7", 3000)} {
+	for _, text := range []string{"abc", "95", "0", "1e300", strings.Repeat("7", 300)} {
 		f := r.row(t, "P1").field
 		typeInto(r, f, text)
 		if got := r.angle(t, "P1"); got != 41.5 {
@@ -470,5 +470,64 @@ func TestPreferencesThatWereDamagedAreNotBelieved(t *testing.T) {
 	}
 	if got := newGreys(inDark, float32(math.NaN())).scale; got != 1 {
 		t.Errorf("a text scale that is no number gives %v", got)
+	}
+}
+
+func TestFileChangedByOtherHands(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	path := filepath.Join(t.TempDir(), "mine.toml")
+	if err := r.bench.Save(path); err != nil {
+		t.Fatal(err)
+	}
+	r.beginKeeping(t.TempDir())
+	defer r.endKeeping()
+	text, err := os.ReadFile(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := os.WriteFile(path, append(text, "# a remark\n"...), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	r.keep()
+	r.until(t, "the question", func() bool { return r.win.Canvas().Overlays().Top() != nil })
+	r.win.Canvas().Overlays().Remove(r.win.Canvas().Overlays().Top())
+	os.Remove(path)
+	r.keeper.busy.Store(false)
+	r.keep()
+	r.until(t, "word of the loss", func() bool { return strings.Contains(r.message.text, "gone") })
+	if !strings.Contains(r.win.Title(), "*") {
+		t.Error("a plan whose file is gone does not count as unsaved")
+	}
+}
+
+func TestUnsavedWorkIsOfferedAtTheNextStart(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	folder := t.TempDir()
+	r.beginKeeping(folder)
+	typeInto(r, r.row(t, "P1").field, "41,25")
+	r.keepNow() // as when a signal ends the program
+	r.endKeeping()
+	// The file bears this test's number; give it one that no program has.
+	files, err := filepath.Glob(filepath.Join(folder, "unsaved-*.json"))
+	if err != nil || len(files) != 1 {
+		t.Fatalf("kept files: %v, %v", files, err)
+	}
+	if err := os.Rename(files[0], filepath.Join(folder, "unsaved-0.json")); err != nil {
+		t.Fatal(err)
+	}
+	again := newRig(t, testdata.Bundled)
+	again.beginKeeping(folder)
+	defer again.endKeeping()
+	again.offerRecovered()
+	if len(again.told) == 0 || again.told[len(again.told)-1] != "offered" {
+		t.Fatalf("the window tells %v", again.told)
+	}
+	found, err := again.keeper.recovery.Find()
+	if err != nil || len(found) != 1 {
+		t.Fatalf("found %v, %v", found, err)
+	}
+	again.bench.Recover(found[0])
+	if got := again.angle(t, "P1"); got != 41.25 {
+		t.Errorf("recovered P1 at %v", got)
 	}
 }
