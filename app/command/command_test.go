@@ -98,7 +98,7 @@ func TestBadInput(t *testing.T) {
 		{"binary rubbish as a scan", []string{"check", file(t, "rubbish.ply", "\x00\xff\x1f\x8b\x08\x00rubbish")}, InputFault, []string{"rubbish.ply"}},
 		{"another kind of file", []string{"check", file(t, "picture.jpg", "x")}, InputFault, []string{"picture.jpg", ".toml", ".stl"}},
 		{"an unknown material in the plan", []string{"look", plan("kryptonite", "0", "distance = 0.4")}, InputFault,
-			[]string{"kryptonite", "block.toml: material", "diamond", "quartz"}},
+			[]string{"kryptonite", "block.toml:3: material", "diamond", "quartz"}},
 		{"an unknown material on the line", []string{"look", "--material", "kryptonite"}, InputFault, []string{"kryptonite", "diamond"}},
 		{"an unknown surrounding", []string{"look", "--in", "air,vinegar"}, InputFault, []string{"vinegar", "water"}},
 		{"an unknown material asked about", []string{"gems", "kryptonite"}, InputFault, []string{"kryptonite", "diamond"}},

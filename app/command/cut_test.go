@@ -165,7 +165,7 @@ func TestCutRefuses(t *testing.T) {
 		{"no cheater", []string{off, "--machine", file(t, "bare.toml", "machine = 1\n")}, InputFault, []string{"off.toml", "G1", "no cheater", "0.5 24.5"}},
 		{"a machine's fault", []string{"--machine", file(t, "bad.toml", "machine = 1\ngear = 1\n")}, InputFault, []string{"bad.toml:2", "gear"}},
 		{"two bad plans at once", []string{file(t, "p.toml", "plan = 1\n"), file(t, "q.toml", "plan = 1\n")}, InputFault, []string{"p.toml:1: width_mm", "q.toml:1: width_mm"}},
-		{"an unknown material in a plan", []string{file(t, "m.toml", strings.Replace(plan, "quartz", "kryptonite", 1))}, InputFault, []string{"m.toml: material", "kryptonite"}},
+		{"an unknown material in a plan", []string{file(t, "m.toml", strings.Replace(plan, "quartz", "kryptonite", 1))}, InputFault, []string{"m.toml:3: material", "kryptonite"}},
 	} {
 		o, folder := cutInto(t, row.args...)
 		if o.status != row.status || o.stdout != "" {
