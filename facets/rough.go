@@ -139,7 +139,7 @@ func (r Rough) Fit(s *Stone) (Fit, error) {
 		if a.scale <= best.Scale {
 			break
 		}
-		if f.nodes >= allNodes {
+		if f.nodes >= f.mostNodes() {
 			f.notes = append(f.notes, "The search among the places to avoid was ended; a larger stone may fit.")
 			break
 		}

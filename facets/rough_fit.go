@@ -18,6 +18,7 @@ type fitter struct {
 	notes     []string
 
 	corners              []mgl64.Vec3 // of the stone, from its centroid
+	beside               [][]int32    // by corner: those at the other ends of its edges
 	sides                []mgl64.Vec3 // directions in the stone's frame along which a place may be kept out
 	centroid             mgl64.Vec3
 	roughAxis, stoneAxis mgl64.Vec3
@@ -32,6 +33,12 @@ func newFitter(r Rough, s *Stone) *fitter {
 	f := &fitter{rough: r, allowance: r.allowance(), centroid: s.centroid(), spheres: slices.Clone(r.AvoidSpheres)}
 	for _, c := range s.Corners {
 		f.corners = append(f.corners, c.Sub(f.centroid))
+	}
+	f.beside = make([][]int32, len(f.corners))
+	for _, e := range s.Edges {
+		a, b := e.Corners[0], e.Corners[1]
+		f.beside[a] = append(f.beside[a], int32(b))
+		f.beside[b] = append(f.beside[b], int32(a))
 	}
 	for _, facet := range s.Facets {
 		f.sides = append(f.sides, facet.Normal)
@@ -102,7 +109,8 @@ func (f *fitter) takeScan(sc *Scan) {
 	}
 	before := len(f.spheres)
 	f.coverDents(sc)
-	if n := len(f.spheres) - before; n > 0 {
+	// Less than a thousandth is the triangulation's own roughness.
+	if share := 1 - sc.Volume/sc.HullVolume; len(f.spheres) > before && share > 1e-3 {
 		f.notes = append(f.notes, fmt.Sprintf("The rough is dented; the stone is kept out of the dents (%.4g mm³ between surface and hull).", sc.HullVolume-sc.Volume))
 	}
 }
@@ -149,15 +157,40 @@ const seenDent = 0.02
 // coverDents covers the surface that lies below the hull with spheres.
 func (f *fitter) coverDents(sc *Scan) {
 	m := sc.mesh
-	deep := make([]bool, len(m.points))
-	for i, p := range m.points {
-		depth := math.Inf(1)
+	// A triangle is the hull's own if one flat holds it; all its corners may lie
+	// on the hull while its middle does not.
+	// The hull may have been thinned, so its own triangles are known by name.
+	own := make(map[[3]int32]bool, len(sc.hull.triangles))
+	name := func(t [3]int32) [3]int32 {
+		slices.Sort(t[:])
+		return t
+	}
+	for _, t := range sc.hull.triangles {
+		own[name(t)] = true
+	}
+	hint := 0
+	onHull := func(t [3]int32) bool {
+		if own[name(t)] {
+			return true
+		}
+		holds := func(p *flat) bool {
+			for _, c := range t {
+				if p.distance-p.normal.Dot(m.points[c]) > seenDent {
+					return false
+				}
+			}
+			return true
+		}
+		if holds(&f.flats[hint]) {
+			return true
+		}
 		for k := range f.flats {
-			if depth = min(depth, f.flats[k].distance-f.flats[k].normal.Dot(p)); depth <= seenDent {
-				break
+			if holds(&f.flats[k]) {
+				hint = k
+				return true
 			}
 		}
-		deep[i] = depth > seenDent
+		return false
 	}
 	// Spheres as wide as a fortieth of the rough keep little more out than the dent.
 	least := max(seenDent, max(sc.Size[0], sc.Size[1], sc.Size[2])/80)
@@ -188,7 +221,7 @@ func (f *fitter) coverDents(sc *Scan) {
 		}
 	}
 	for _, t := range m.triangles {
-		if deep[t[0]] || deep[t[1]] || deep[t[2]] {
+		if !onHull(t) {
 			cover(m.points[t[0]], m.points[t[1]], m.points[t[2]], 0)
 		}
 	}
@@ -199,6 +232,7 @@ type oriented struct {
 	f       *fitter
 	corners []mgl64.Vec3 // from the centroid, in the rough's frame
 	turn    mgl64.Mat3
+	last    int32 // corner at which the last support was found
 	lp      linearProgram
 }
 
@@ -234,11 +268,23 @@ func (f *fitter) orient(turn mgl64.Mat3) *oriented {
 	return o
 }
 
-// support is the stone's extent along a direction, from its centroid.
+// support is the stone's extent along a direction, from its centroid. It climbs
+// from corner to higher corner along edges, which on a convex solid ends at the
+// highest, and starts where the last one ended.
 func (o *oriented) support(u mgl64.Vec3) float64 {
-	most := math.Inf(-1)
-	for _, c := range o.corners {
-		most = max(most, u[0]*c[0]+u[1]*c[1]+u[2]*c[2])
+	height := func(i int32) float64 {
+		c := &o.corners[i]
+		return u[0]*c[0] + u[1]*c[1] + u[2]*c[2]
+	}
+	most := height(o.last)
+	for climbing := true; climbing; {
+		climbing = false
+		for _, i := range o.f.beside[o.last] {
+			if h := height(i); h > most {
+				o.last, most, climbing = i, h, true
+				break
+			}
+		}
 	}
 	return most
 }
@@ -420,7 +466,7 @@ func (f *fitter) avoiding(turn mgl64.Mat3, floor float64) (float64, mgl64.Vec3, 
 	// First straight down, always on to the best of the sides just tried, which
 	// soon gives a stone that fits; then back to what promised more.
 	c, more := choice{nil, scale, centre}, true
-	for nodes := 0; more && c.scale > floor && nodes < mostNodes && f.nodes < allNodes; nodes++ {
+	for nodes := 0; more && c.scale > floor && nodes < mostNodes && f.nodes < f.mostNodes(); nodes++ {
 		f.nodes++
 		options := o.options(c.scale, c.centre, sides, supports)
 		if options == nil {
@@ -453,6 +499,18 @@ func (f *fitter) avoiding(turn mgl64.Mat3, floor float64) (float64, mgl64.Vec3, 
 		}
 	}
 	return best.scale, place(best.scale, best.centre), found
+}
+
+// mostNodes is the number of choices that all orientations may take together:
+// as many as some seconds allow.
+func (f *fitter) mostNodes() int {
+	const (
+		work      = 2e9
+		perSphere = 20 // sides looked at before one is clear
+		perFlat   = 60 // exchanges of a linear program
+	)
+	cost := perSphere*len(f.spheres) + perFlat*mostSides*len(f.flats)
+	return min(allNodes, max(50, work/(1+cost)))
 }
 
 // options returns the sides from which the place that reaches deepest into the

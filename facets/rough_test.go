@@ -258,12 +258,11 @@ func TestDentedRoughKeepsTheStoneOut(t *testing.T) {
 	}
 }
 
-// An angle of two bars, 10 x 10 x 2 with a pocket of 7 x 7 x 2: the hull's
-// largest room is in the pocket, where there is no stone.
-func TestAngledRoughDoesNotFillItsPocket(t *testing.T) {
+// angledRough is an angle of two bars 3 wide and 6 thick.
+func angledRough() *rawMesh {
 	m := &rawMesh{format: "made"}
 	ring := []mgl64.Vec2{{0, 0}, {10, 0}, {10, 3}, {3, 3}, {3, 10}, {0, 10}}
-	for _, z := range []float64{0, 2} {
+	for _, z := range []float64{0, 6} {
 		for _, p := range ring {
 			m.points = append(m.points, p.Vec3(z))
 		}
@@ -276,14 +275,21 @@ func TestAngledRoughDoesNotFillItsPocket(t *testing.T) {
 		j := (i + 1) % 6
 		m.polygon([]int32{i, j, j + 6, i + 6})
 	}
-	sc := scanOfRough(t, m)
-	if sc.OpenEdges+sc.TangledEdges != 0 || math.Abs(sc.Volume-102) > 1e-3 {
+	return m
+}
+
+// The pocket between the bars, closed by the hull, is a triangle with legs of 7
+// and would take a cube of 3.5 (the square in a right triangle has half its
+// leg); the bars take one of 3.
+func TestAngledRoughDoesNotFillItsPocket(t *testing.T) {
+	sc := scanOfRough(t, angledRough())
+	if sc.OpenEdges+sc.TangledEdges != 0 || math.Abs(sc.Volume-306) > 1e-3 {
 		t.Fatalf("the rough was made wrong: %d open edges, %.4f mm3", sc.OpenEdges, sc.Volume)
 	}
 	f := mustFit(t, Rough{Shape: Scanned, Scan: sc, Allowance: -1}, cuboid(t, 2, 2, 2))
-	// A cube of 2 fits a bar; the spheres cost some of the width, not of the thickness.
-	if f.Scale > 1+1e-5 || f.Scale < 0.9 {
-		t.Errorf("scale %.4f, want nearly 1", f.Scale)
+	// The spheres that cover the bars' inner walls reach 0.125 into the width.
+	if f.Scale > 1.5+1e-5 || f.Scale < (3-3*0.125)/2 {
+		t.Errorf("scale %.4f, want nearly 1.5", f.Scale)
 	}
 }
 

@@ -305,31 +305,32 @@ func (p *flat) farthest(m *mesh, t int32) float64 {
 	return far
 }
 
-// deepest returns the deepest point below the flats, Depth 0 if none lies deeper than reach.
+// deepest returns the deepest point below the flats, Depth 0 if none lies
+// deeper than reach. Only triangles that lie on no flat are looked at, at their
+// corners and at points between, since a triangle may sink with its corners up.
 func (sc *Scan) deepest(owner []int32, planes []flat, reach float64) Dent {
-	seen := make([]bool, len(sc.mesh.points))
-	for t, i := range owner {
-		if i >= 0 {
-			for _, c := range sc.mesh.triangles[t] {
-				seen[c] = true
-			}
-		}
-	}
+	const steps = 4 // along an edge
 	var d Dent
 	deepest := reach
-	for c, done := range seen {
-		if done {
+	for t, own := range owner {
+		if own >= 0 {
 			continue
 		}
-		depth := math.Inf(1)
-		for i := range planes {
-			depth = min(depth, planes[i].distance-planes[i].normal.Dot(sc.mesh.points[c]))
-			if depth <= deepest {
-				break
+		c := sc.mesh.triangles[t]
+		a, ab, ac := sc.mesh.points[c[0]], sc.mesh.points[c[1]].Sub(sc.mesh.points[c[0]]), sc.mesh.points[c[2]].Sub(sc.mesh.points[c[0]])
+		for u := range steps + 1 {
+			for v := range steps + 1 - u {
+				p := a.Add(ab.Mul(float64(u) / steps)).Add(ac.Mul(float64(v) / steps))
+				depth := math.Inf(1)
+				for i := range planes {
+					if depth = min(depth, planes[i].distance-planes[i].normal.Dot(p)); depth <= deepest {
+						break
+					}
+				}
+				if depth > deepest {
+					deepest, d = depth, Dent{At: p, Depth: depth}
+				}
 			}
-		}
-		if depth > deepest {
-			deepest, d = depth, Dent{At: sc.mesh.points[c], Depth: depth}
 		}
 	}
 	return d

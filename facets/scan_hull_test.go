@@ -42,6 +42,9 @@ func TestHullHoldsAllPoints(t *testing.T) {
 			corners := map[int32]bool{}
 			for i, c := range triangles {
 				f := h.face(c[0], c[1], c[2])
+				if f.normal == [3]float64{} {
+					t.Fatalf("%s of %d: triangle %d has no area", name, n, i)
+				}
 				for p := range points {
 					if h.side(&f, int32(p)) > 0 {
 						t.Fatalf("%s of %d: point %d lies outside triangle %d", name, n, p, i)

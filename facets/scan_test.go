@@ -287,6 +287,24 @@ func TestDentIsShownAndFilledOnlyWhenAllowed(t *testing.T) {
 	}
 }
 
+// Every corner of an angle of two bars lies on its hull's flats, the inner edge
+// does not: half way up it lies 3 below both ends, farther below the pocket's lid.
+func TestDentBetweenCornersOnTheHull(t *testing.T) {
+	sc, err := ReadScan(bytes.NewReader(binarySTL(angledRough())), "angle.stl", ScanOptions{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if at := sc.Dent.At; math.Abs(sc.Dent.Depth-3) > 1e-5 || math.Abs(at[2]-3) > 1e-5 || math.Abs(min(at[0], at[1])-3) > 1e-5 {
+		t.Errorf("dent %+v, want 3 deep half way up an inner wall", sc.Dent)
+	}
+	if want := 6 * 49.0 / 2; math.Abs(sc.Dent.Added-want) > 1e-3 {
+		t.Errorf("the hull adds %.5f mm3, want %g", sc.Dent.Added, want)
+	}
+	if _, err := sc.Stone(ScanPlacement{}); err == nil {
+		t.Error("an angle was taken for convex")
+	}
+}
+
 func TestOpenSurfaceNamesTheHole(t *testing.T) {
 	m := dentedCube(0)
 	m.triangles = m.triangles[:len(m.triangles)-1] // the last roof of the pit: edges 4, and twice sqrt(8)
