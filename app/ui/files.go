@@ -69,7 +69,7 @@ func (w *window) explain(title string, err error) {
 	scroll.SetMinSize(fyne.NewSize(min(560, w.win.Canvas().Size().Width-120), 170))
 	d := dialog.NewCustom(title, "Close", container.NewBorder(nil,
 		container.NewGridWrap(fyne.NewSize(400, 24), keeps), nil, nil, scroll), w.win)
-	d.Show()
+	w.raise(d)
 }
 
 // openDialog asks which plan to open.
@@ -99,7 +99,7 @@ func (w *window) showFileDialog(d *dialog.FileDialog) {
 	}
 	size := w.win.Canvas().Size()
 	d.Resize(fyne.NewSize(min(900, size.Width*0.9), min(620, size.Height*0.9)))
-	d.Show()
+	w.raise(d)
 }
 
 // folder is where the plan lies, else where the last one did, else the user's own.
@@ -202,7 +202,7 @@ func (w *window) unlessUnsaved(what string, do func()) {
 		choice("Discard", widget.MediumImportance, do),
 		choice("Save", widget.HighImportance, func() { w.saveThen(do) }),
 	})
-	d.Show()
+	w.raise(d)
 	w.tellOnceDrawn("asked")
 }
 

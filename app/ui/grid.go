@@ -38,12 +38,14 @@ type grid struct {
 	rocking  *line      // its name
 	rocked   *wrapped   // what it shows
 
-	pixels   int // of a map's edge on the screen, as last asked for
+	large    *[2]int // row and column of the map that fills the pane; nil for all six
+	pixels   int     // of a map's edge on the screen, as last asked for
 	onPixels func(int)
 	onTilt   func(facets.Angle)
 }
 
-func newGrid(bench *model.Bench) *grid {
+// newGrid builds the grid; stray takes the keys that it has no use for.
+func newGrid(bench *model.Bench, stray func(*fyne.KeyEvent)) *grid {
 	g := &grid{bench: bench}
 	g.box = container.NewWithoutLayout() // until all is in it
 	for j := range columns {
@@ -60,6 +62,8 @@ func newGrid(bench *model.Bench) *grid {
 		for j := range columns {
 			g.maps[i][j] = newMapView(bench.Look.Point, bench.Look.PointAway,
 				func(x, y float64) { bench.Look.Follow(j, x, y) })
+			g.maps[i][j].stray = stray
+			g.maps[i][j].enlarge = func() { g.toggle(i, j) }
 			g.add(g.maps[i][j])
 		}
 		g.add(g.scales[i])
@@ -70,6 +74,7 @@ func newGrid(bench *model.Bench) *grid {
 	}
 	g.ledger.addTo(g.box)
 	g.strip = newTiltStrip(bench.Look, func(stop int) { g.onTilt(bench.Look.Strip.Tilts[stop]) })
+	g.strip.stray = stray
 	g.rocking = newLine(theme.ColorNameForeground, theme.SizeNameText).bold()
 	g.rocking.setText("Rocked")
 	g.rocked = newWrapped(colourDim, theme.SizeNameCaptionText)
@@ -77,6 +82,60 @@ func newGrid(bench *model.Bench) *grid {
 	g.box.Layout = g
 	g.refreshAll()
 	return g
+}
+
+// toggle lets one map fill the pane, or brings all six back.
+func (g *grid) toggle(row, column int) {
+	if g.large != nil {
+		g.enlarge(nil)
+	} else {
+		g.enlarge(&[2]int{row, column})
+	}
+}
+
+func (g *grid) enlarge(which *[2]int) {
+	g.large = which
+	all := which == nil
+	for j := range columns {
+		mine := all || which[1] == j
+		for _, o := range []fyne.CanvasObject{g.media[j], g.indices[j], g.critical[j]} {
+			setVisible(o, mine)
+		}
+		setVisible(g.bars[j], all)
+	}
+	for i := range model.Rows {
+		mine := all || which[0] == i
+		for _, o := range []fyne.CanvasObject{g.row[i], g.meaning[i], g.scales[i]} {
+			setVisible(o, mine)
+		}
+		for j := range columns {
+			setVisible(g.maps[i][j], all || which[0] == i && which[1] == j)
+		}
+	}
+	g.ledger.setVisible(all)
+	g.box.Refresh()
+}
+
+// layoutLarge gives the one map all of the pane.
+func (g *grid) layoutLarge(size fyne.Size) {
+	i, j := g.large[0], g.large[1]
+	head := g.headHeight()
+	edge := max(60, min(size.Width-gutter-scaleWide-16, size.Height-head-beneath))
+	left := max(0, (size.Width-gutter-scaleWide-16-edge)/2)
+	x := left + gutter
+	name := g.media[j].MinSize()
+	place(g.media[j], x-3, 0, name.Width, name.Height)
+	place(g.indices[j], x+name.Width+4, 2, max(0, edge-name.Width-4), name.Height)
+	place(g.critical[j], x, name.Height, edge, g.critical[j].MinSize().Height)
+	row := g.row[i].MinSize()
+	place(g.row[i], left-3, head, min(row.Width, gutter), row.Height)
+	place(g.meaning[i], left, head+row.Height+2, gutter-12, edge-row.Height-2)
+	place(g.maps[i][j], x, head, edge, edge)
+	place(g.scales[i], x+edge+10, head, scaleWide, edge)
+	for _, o := range []fyne.CanvasObject{g.strip, g.rocking, g.rocked} {
+		setVisible(o, false)
+	}
+	g.tellPixels(edge)
 }
 
 func (g *grid) add(objects ...fyne.CanvasObject) {
@@ -256,6 +315,10 @@ func (g *grid) barHeight() float32 { return 16 }
 
 // Layout gives the maps the largest squares that width and height allow.
 func (g *grid) Layout(_ []fyne.CanvasObject, size fyne.Size) {
+	if g.large != nil {
+		g.layoutLarge(size)
+		return
+	}
 	head, foot := g.headHeight(), g.ledger.height()+g.barHeight()
 	wide := (size.Width-gutter-scaleWide)/columns - between
 	high := func(taken float32) float32 { return (size.Height-head-foot-taken)/model.Rows - beneath }

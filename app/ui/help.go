@@ -24,7 +24,7 @@ func (w *window) about() {
 	text.Wrapping = fyne.TextWrapWord
 	scroll := container.NewVScroll(text)
 	scroll.SetMinSize(fyne.NewSize(440, 240))
-	dialog.ShowCustom("About Pavilight", "Close", scroll, w.win)
+	w.raise(dialog.NewCustom("About Pavilight", "Close", scroll, w.win))
 }
 
 // versions lists the program's own version and those of the libraries that matter.
@@ -83,5 +83,5 @@ func (w *window) firstSteps() {
 			"The first column is the stone in air, the others are the stone in water and in oil."),
 		hint("Open your own plan", "Drop a plan file on the window, or take one of the samples from the File menu. What you change can be undone, step by step."),
 	)
-	dialog.ShowCustom("First steps", "Start", container.NewGridWrap(fyne.NewSize(520, 280), all), w.win)
+	w.raise(dialog.NewCustom("First steps", "Start", container.NewGridWrap(fyne.NewSize(520, 280), all), w.win))
 }

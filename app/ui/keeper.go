@@ -122,7 +122,7 @@ func (w *window) askReload(path string) {
 	}, w.win)
 	d.SetConfirmText("Read again")
 	d.SetDismissText("Keep mine")
-	d.Show()
+	w.raise(d)
 }
 
 // keepNow keeps unsaved work before the program ends without asking.
@@ -181,6 +181,6 @@ func (w *window) offer(found []model.Recovered) {
 		widget.NewButton("Later", next(func() {})),
 		take,
 	})
-	d.Show()
+	w.raise(d)
 	w.tell("offered")
 }

@@ -17,6 +17,7 @@ type ledger struct {
 	box   *fyne.Container
 	lines []*ledgerLine
 	shown int
+	away  bool // none is to be seen
 }
 
 type ledgerLine struct {
@@ -51,20 +52,23 @@ func (l *ledger) show(rows []model.LedgerRow) (changed bool) {
 		}
 	}
 	for k, t := range l.lines {
-		hidden := k >= len(rows)
 		for _, o := range t.objects() {
-			if o.Visible() == hidden {
-				if hidden {
-					o.Hide()
-				} else {
-					o.Show()
-				}
-			}
+			setVisible(o, k < len(rows) && !l.away)
 		}
 	}
 	changed = l.shown != len(rows)
 	l.shown = len(rows)
 	return changed
+}
+
+// setVisible shows the whole table or hides it.
+func (l *ledger) setVisible(visible bool) {
+	l.away = !visible
+	for k, t := range l.lines {
+		for _, o := range t.objects() {
+			setVisible(o, visible && k < l.shown)
+		}
+	}
 }
 
 func (l *ledger) newLine() *ledgerLine {

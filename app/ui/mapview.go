@@ -2,6 +2,7 @@ package ui
 
 import (
 	"image/color"
+	"time"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
@@ -19,6 +20,9 @@ type mapView struct {
 	point   func(x, y float64) // shares of the picture from its top left
 	away    func()
 	follow  func(x, y float64) // the ray through a place
+	enlarge func()             // to the whole pane, or back
+	stray   func(*fyne.KeyEvent)
+	pressed time.Time // when the last press came, for the double click
 
 	cross   fyne.Position // shares; shown if crossed
 	crossed bool
@@ -97,12 +101,23 @@ func (m *mapView) MouseMoved(e *desktop.MouseEvent) { m.ask(e.Position) }
 func (m *mapView) MouseOut() { m.away() }
 
 // MouseDown follows the ray under the pointer, and takes the focus, so that the arrow
-// keys move the cross-hair.
+// keys move the cross-hair. A double click enlarges the map.
 func (m *mapView) MouseDown(e *desktop.MouseEvent) {
 	if c := fyne.CurrentApp().Driver().CanvasForObject(m); c != nil {
 		c.Focus(m)
 	}
-	if x, y, ok := m.shares(e.Position); ok && e.Button == desktop.MouseButtonPrimary {
+	if e.Button != desktop.MouseButtonPrimary {
+		return
+	}
+	// The toolkit's double tap would hold every single click back; so it is told here.
+	if now := time.Now(); now.Sub(m.pressed) < fyne.CurrentApp().Driver().DoubleTapDelay() {
+		m.pressed = time.Time{}
+		m.enlarge()
+		return
+	} else {
+		m.pressed = now
+	}
+	if x, y, ok := m.shares(e.Position); ok {
 		m.follow(x, y)
 	}
 }
@@ -114,7 +129,7 @@ func (m *mapView) MouseUp(*desktop.MouseEvent) {}
 func (m *mapView) Cursor() desktop.Cursor { return desktop.CrosshairCursor }
 
 // TypedKey moves the cross-hair by a fiftieth of the map; Enter follows the ray
-// there, Escape takes the cross-hair away.
+// there, plus and minus enlarge the map and back, Escape takes the cross-hair away.
 func (m *mapView) TypedKey(e *fyne.KeyEvent) {
 	const step = 0.02
 	at := m.cross
@@ -132,8 +147,15 @@ func (m *mapView) TypedKey(e *fyne.KeyEvent) {
 		at.Y += step
 	case fyne.KeyReturn, fyne.KeyEnter, fyne.KeySpace:
 		m.follow(float64(at.X), float64(at.Y))
+	case fyne.KeyPlus, fyne.KeyEqual, fyne.KeyMinus:
+		m.enlarge()
+		return
 	case fyne.KeyEscape:
-		m.away()
+		if m.crossed {
+			m.away()
+		} else {
+			m.stray(e)
+		}
 		return
 	default:
 		return

@@ -20,7 +20,11 @@ func (w *window) chooseMaterial() {
 	var d *dialog.CustomDialog
 	list := widget.NewList(
 		func() int { return len(shown) },
-		func() fyne.CanvasObject { return widget.NewLabel("") },
+		func() fyne.CanvasObject {
+			l := widget.NewLabel("")
+			l.Truncation = fyne.TextTruncateEllipsis
+			return l
+		},
 		func(i widget.ListItemID, o fyne.CanvasObject) {
 			if i < len(shown) {
 				o.(*widget.Label).SetText(materialLine(shown[i]))
@@ -35,7 +39,7 @@ func (w *window) chooseMaterial() {
 			take(shown[i])
 		}
 	}
-	filter := widget.NewEntry()
+	filter := w.newFormEntry()
 	filter.SetPlaceHolder("Type a name: ruby, citrine, glass")
 	filter.OnChanged = func(text string) {
 		shown = matching(all, text)
@@ -48,10 +52,10 @@ func (w *window) chooseMaterial() {
 			take(shown[0])
 		}
 	}
-	size := fyne.NewSize(460, min(440, w.win.Canvas().Size().Height-200))
+	size := fyne.NewSize(520, min(440, w.win.Canvas().Size().Height-200))
 	d = dialog.NewCustom("What the stone is made of", "Cancel",
 		container.NewGridWrap(size, container.NewBorder(filter, nil, nil, nil, list)), w.win)
-	d.Show()
+	w.raise(d)
 	w.win.Canvas().Focus(filter)
 }
 
@@ -63,6 +67,10 @@ func materialLine(m *gems.Material) string {
 	}
 	if m.Density > 0 {
 		text += fmt.Sprintf("   %.2f g/cm³", m.Density)
+	}
+	const most = 4 // names; more would not fit
+	if len(m.Names) > 0 {
+		text += "   " + strings.Join(m.Names[:min(most, len(m.Names))], ", ")
 	}
 	return text
 }

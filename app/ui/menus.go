@@ -16,6 +16,7 @@ import (
 type menus struct {
 	main       *fyne.MainMenu
 	undo, redo *fyne.MenuItem
+	tier       []*fyne.MenuItem // about the tier that is picked
 	save       *fyne.MenuItem
 	recent     *fyne.MenuItem
 	plan       *fyne.MenuItem
@@ -58,7 +59,8 @@ func (w *window) buildMenu() *fyne.MainMenu {
 
 	m.undo = item("Undo", &fyne.ShortcutUndo{}, w.undo)
 	m.redo = item("Redo", &fyne.ShortcutRedo{}, w.redo)
-	edit := fyne.NewMenu("Edit", m.undo, m.redo)
+	m.tier = w.tierItems()
+	edit := fyne.NewMenu("Edit", append([]*fyne.MenuItem{m.undo, m.redo, fyne.NewMenuItemSeparator()}, m.tier...)...)
 
 	doors := make([]*fyne.MenuItem, 0, rooms)
 	for r, key := range []fyne.KeyName{fyne.Key1, fyne.Key2, fyne.Key3, fyne.Key4} {
@@ -77,6 +79,7 @@ func (w *window) buildMenu() *fyne.MainMenu {
 	view := fyne.NewMenu("View", append(doors,
 		fyne.NewMenuItemSeparator(),
 		m.plan, m.stone,
+		item("Enlarge a map, or all six", control(fyne.KeyM), w.enlarge),
 		fyne.NewMenuItemSeparator(),
 		item("Larger text", control(fyne.KeyEqual), func() { w.scaleText(1) }),
 		item("Smaller text", control(fyne.KeyMinus), func() { w.scaleText(-1) }),
@@ -121,13 +124,17 @@ func (w *window) refreshMenu() {
 	wide := w.win.Canvas().Size().Width
 	plan, stone := w.panes.shown(wide)
 	recent := w.files.recent()
-	shown := fmt.Sprint(undo, canUndo, redo, canRedo, w.bench.Doc.Modified(), plan, stone, w.files.brightness(), recent)
+	_, picked := w.selectedTier()
+	shown := fmt.Sprint(picked, undo, canUndo, redo, canRedo, w.bench.Doc.Modified(), plan, stone, w.files.brightness(), recent)
 	if shown == m.shown {
 		return
 	}
 	m.shown = shown
 	m.undo.Label, m.undo.Disabled = strings.TrimSpace("Undo "+undo), !canUndo
 	m.redo.Label, m.redo.Disabled = strings.TrimSpace("Redo "+redo), !canRedo
+	for _, i := range m.tier {
+		i.Disabled = !picked && i.Label != "New tier…"
+	}
 	m.save.Disabled = !w.bench.Doc.Modified() && w.bench.Doc.Path != ""
 	m.plan.Checked, m.stone.Checked = plan, stone
 	for b, i := range m.themes {
@@ -176,6 +183,19 @@ func (w *window) fold(key string) {
 	w.files.keepPane(key, !now)
 	w.body.Refresh()
 	w.refreshMenu()
+}
+
+// enlarge lets the map with the focus, or the first, fill the pane, or brings all back.
+func (w *window) enlarge() {
+	for i := range w.grid.maps {
+		for j, m := range w.grid.maps[i] {
+			if m.focused {
+				w.grid.toggle(i, j)
+				return
+			}
+		}
+	}
+	w.grid.toggle(0, 0)
 }
 
 func (w *window) setTheme(b brightness) {

@@ -17,6 +17,7 @@ type rayList struct {
 	widget.BaseWidget
 
 	pick    func(step int) // -1 for the entry
+	stray   func(*fyne.KeyEvent)
 	lines   []model.RayLine
 	more    int
 	step    int
@@ -28,8 +29,8 @@ var (
 	_ fyne.Focusable    = (*rayList)(nil)
 )
 
-func newRayList(pick func(step int)) *rayList {
-	l := &rayList{pick: pick, step: -1}
+func newRayList(pick func(step int), stray func(*fyne.KeyEvent)) *rayList {
+	l := &rayList{pick: pick, stray: stray, step: -1}
 	l.ExtendBaseWidget(l)
 	return l
 }
@@ -64,6 +65,8 @@ func (l *rayList) TypedKey(e *fyne.KeyEvent) {
 		l.pick(-1)
 	case fyne.KeyEnd:
 		l.pick(len(l.lines))
+	default:
+		l.stray(e)
 	}
 }
 

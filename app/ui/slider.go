@@ -30,6 +30,7 @@ type tickSlider struct {
 	preview func(float64)
 	settled func()
 	gained  func()
+	stray   func(*fyne.KeyEvent) // takes keys that the slider has no use for; may be nil
 
 	dragging, hovered, focused bool
 }
@@ -166,6 +167,9 @@ func (s *tickSlider) TypedKey(e *fyne.KeyEvent) {
 	case fyne.KeyEnd:
 		s.set(s.high)
 	default:
+		if s.stray != nil {
+			s.stray(e)
+		}
 		return
 	}
 	s.settle()

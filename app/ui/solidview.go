@@ -27,6 +27,7 @@ type solidView struct {
 	pose     solid.Pose
 	selected string
 	pick     func(tier string)
+	stray    func(*fyne.KeyEvent)
 
 	ray *model.Ray // drawn through the stone; nil for none
 
@@ -48,8 +49,8 @@ var (
 // mostLabels is how many tiers are named on the solid.
 const mostLabels = 24
 
-func newSolidView(pick func(tier string)) *solidView {
-	s := &solidView{pose: restingPose(), picture: &canvas.Image{}, pick: pick}
+func newSolidView(pick func(tier string), stray func(*fyne.KeyEvent)) *solidView {
+	s := &solidView{pose: restingPose(), picture: &canvas.Image{}, pick: pick, stray: stray}
 	s.picture.ScaleMode = canvas.ImageScaleFastest
 	s.picture.FillMode = canvas.ImageFillStretch
 	s.ExtendBaseWidget(s)
@@ -234,7 +235,11 @@ func (s *solidView) TypedKey(e *fyne.KeyEvent) {
 	case fyne.KeyHome:
 		s.turnTo(restingPose())
 	case fyne.KeyEscape:
-		s.pick("")
+		if s.selected != "" && s.ray == nil {
+			s.pick("")
+		} else {
+			s.stray(e)
+		}
 	}
 }
 

@@ -20,7 +20,9 @@ import (
 // a number field and a slider for its angle.
 type tierList struct {
 	bench *model.Bench
-	say   func(error) // tells why an entry was refused; nil when all is well
+	say   func(error)             // tells why an entry was refused; nil when all is well
+	items func() []*fyne.MenuItem // about the tier that is picked
+	stray func(*fyne.KeyEvent)    // takes keys that no row has a use for
 
 	box    *fyne.Container
 	scroll *container.Scroll
@@ -28,8 +30,8 @@ type tierList struct {
 	rows   []*tierRow
 }
 
-func newTierList(bench *model.Bench, say func(error)) *tierList {
-	l := &tierList{bench: bench, say: say, box: container.New(layout.NewCustomPaddedVBoxLayout(2))}
+func newTierList(bench *model.Bench, say func(error), stray func(*fyne.KeyEvent)) *tierList {
+	l := &tierList{bench: bench, say: say, stray: stray, box: container.New(layout.NewCustomPaddedVBoxLayout(2))}
 	l.scroll = container.NewVScroll(container.New(layout.NewCustomPaddedLayout(0, 8, 0, 12), l.box))
 	l.refresh()
 	return l
@@ -142,8 +144,8 @@ func newTierRow(l *tierList, row model.TierRow) *tierRow {
 		r.slider.preview = func(v float64) {
 			l.say(l.bench.SetAngle(r.number, facets.Angle(v)*facets.Degree, true))
 		}
-		r.slider.settled, r.slider.gained = l.bench.Doc.Settle, pick
-		r.slider.settled = func() { l.bench.Doc.Settle() }
+		r.slider.settled = func() { l.bench.Doc.Settle() } // of whatever document is open then
+		r.slider.gained, r.slider.stray = pick, l.stray
 	}
 	r.ExtendBaseWidget(r)
 	return r
@@ -193,6 +195,14 @@ func fixedAngle(row model.TierRow) string {
 
 // Tapped selects the tier.
 func (r *tierRow) Tapped(*fyne.PointEvent) { r.list.bench.Select(r.row.Name) }
+
+// TappedSecondary picks the tier and offers what can be done with it.
+func (r *tierRow) TappedSecondary(e *fyne.PointEvent) {
+	r.list.bench.Select(r.row.Name)
+	if c := fyne.CurrentApp().Driver().CanvasForObject(r); c != nil && r.list.items != nil {
+		widget.ShowPopUpMenuAtPosition(fyne.NewMenu("", r.list.items()...), c, e.AbsolutePosition)
+	}
+}
 
 // CreateRenderer lays name and remark above field and slider.
 func (r *tierRow) CreateRenderer() fyne.WidgetRenderer {

@@ -23,6 +23,7 @@ type tiltStrip struct {
 
 	look    *model.Look
 	choose  func(stop int)
+	stray   func(*fyne.KeyEvent)
 	strip   *model.Strip
 	images  [tiltStops]*canvas.Image
 	focused bool
@@ -85,6 +86,7 @@ func (s *tiltStrip) TypedKey(e *fyne.KeyEvent) {
 	case fyne.KeyEnd:
 		now = tiltStops - 1
 	default:
+		s.stray(e)
 		return
 	}
 	if s.strip != nil && now >= 0 && now < tiltStops {

@@ -8,6 +8,7 @@ import (
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
 	"fyne.io/fyne/v2/container"
+	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/layout"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
@@ -53,6 +54,7 @@ type window struct {
 	head     *numberField
 	solid    *solidView
 	facts    *factTable
+	from     *fromPlot
 	factBox  *container.Scroll
 	rayBox   *fyne.Container
 	rayTitle *wrapped
@@ -67,6 +69,7 @@ type window struct {
 	closed  bool
 	ledgers throttle
 	stages  map[string]bool
+	dialogs []dialog.Dialog           // that are open, the top one last
 	asked   map[string]*widget.Button // answers of the question that is open, by their label
 }
 
@@ -107,13 +110,14 @@ func (w *window) build() {
 	w.progress = newProgressLine()
 	w.stop = widget.NewButton("Stop", w.stopOrResume)
 
-	w.list = newTierList(w.bench, w.say)
+	w.list = newTierList(w.bench, w.say, w.strayKey)
+	w.list.items = w.tierItems
 	w.troubles = widget.NewLabel("")
 	w.troubles.Wrapping = fyne.TextWrapWord
 	w.fault = w.troubleBox()
 	w.fault.Hide()
 
-	w.grid = newGrid(w.bench)
+	w.grid = newGrid(w.bench, w.strayKey)
 	w.grid.onPixels = func(px int) { w.bench.Look.Adjust(func(s *trace.Settings) { s.Pixels = px }) }
 	degrees := func(set func(*trace.Settings, facets.Angle), most float64, what string, step float64) *numberField {
 		f := newNumberField(readDegrees, writeDegrees, step)
@@ -148,10 +152,11 @@ func (w *window) build() {
 	w.solid = newSolidView(func(tier string) {
 		w.bench.Select(tier)
 		w.list.reveal(tier)
-	})
+	}, w.strayKey)
 	w.facts = newFactTable()
+	w.from = newFromPlot()
 	w.rayTitle = newWrapped(theme.ColorNameForeground, theme.SizeNameText)
-	w.ray = newRayList(w.bench.Look.PickBounce)
+	w.ray = newRayList(w.bench.Look.PickBounce, w.strayKey)
 	w.message = newLine(colourDim, theme.SizeNameCaptionText)
 	w.light = newLine(colourDim, theme.SizeNameCaptionText).aligned(fyne.TextAlignTrailing)
 }
@@ -208,7 +213,10 @@ func (w *window) headerBar() fyne.CanvasObject {
 
 // planPane is the left one: the tiers, and what is wrong with the plan if anything is.
 func (w *window) planPane() fyne.CanvasObject {
-	return pane(container.NewBorder(nil, w.fault, nil, nil, w.list.scroll))
+	add := widget.NewButtonWithIcon("Tier", theme.ContentAddIcon(), w.addTier)
+	add.Importance = widget.LowImportance
+	foot := container.NewVBox(container.New(layout.NewCustomPaddedLayout(0, 4, 8, 8), container.NewHBox(add)), w.fault)
+	return pane(container.NewBorder(nil, foot, nil, nil, w.list.scroll))
 }
 
 func (w *window) troubleBox() *fyne.Container {
@@ -247,7 +255,10 @@ func (w *window) stonePane() fyne.CanvasObject {
 	poses := container.NewGridWithColumns(4, pose("Table", solid.FaceUp), pose("Side", solid.Profile),
 		pose("Culet", solid.FaceDown), pose("Askew", restingPose))
 	top := container.New(&squareLayout{}, w.solid, poses)
-	w.factBox = container.NewVScroll(container.New(layout.NewCustomPaddedLayout(8, 8, 14, 14), w.facts.box))
+	whence := newWord(theme.ColorNameForeground, theme.SizeNameText, "Where it comes from").bold()
+	under := newWord(colourDim, theme.SizeNameCaptionText, "share of returned light by angle from the eye")
+	w.factBox = container.NewVScroll(container.New(layout.NewCustomPaddedLayout(8, 8, 14, 10),
+		container.New(layout.NewCustomPaddedVBoxLayout(3), w.facts.box, gap(1), whence, under, w.from)))
 	copies := widget.NewButton("Copy", func() {
 		if r := w.bench.Look.Ray; r != nil {
 			w.app.Clipboard().SetContent(r.Text())
@@ -321,6 +332,7 @@ func (w *window) onLook(c model.Change) {
 		if w.ledgers.due(final) {
 			w.grid.refreshHeadings()
 			w.grid.refreshLedger()
+			w.refreshFrom()
 			w.refreshProgress()
 		}
 		w.once("coarse")
@@ -392,6 +404,20 @@ func (w *window) refreshFacts() {
 	w.weight.setText(w.bench.Weight())
 }
 
+// refreshFrom shows where the returned light comes from.
+func (w *window) refreshFrom() {
+	f := w.bench.Look.Frame
+	if f == nil {
+		return
+	}
+	var curves [columns][fromBins]float64
+	var names [columns]string
+	for j := range min(columns, len(f.Result.Columns)) {
+		curves[j], names[j] = f.Result.Columns[j].From, f.Around[j].Medium.Key
+	}
+	w.from.show(curves, names, f.Settings.Head.Degrees(), true)
+}
+
 // refreshRay shows the followed ray, in the maps, in the stone and as a list.
 func (w *window) refreshRay() {
 	r := w.bench.Look.Ray
@@ -461,6 +487,9 @@ func (w *window) strayKey(e *fyne.KeyEvent) {
 		return
 	}
 	switch {
+	case w.escape():
+	case w.grid.large != nil:
+		w.grid.enlarge(nil)
 	case w.bench.Look.Ray != nil:
 		w.bench.Look.Unfollow()
 	case w.bench.Look.Progress().Active:

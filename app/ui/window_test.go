@@ -531,3 +531,34 @@ func TestUnsavedWorkIsOfferedAtTheNextStart(t *testing.T) {
 		t.Errorf("recovered P1 at %v", got)
 	}
 }
+
+func TestEnlargingAMapAndBack(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	r.refined(t)
+	small := r.grid.maps[1][2].Size().Width
+	r.grid.toggle(1, 2)
+	if got := r.grid.maps[1][2].Size().Width; got < 2*small || r.grid.maps[0][0].Visible() || r.grid.strip.Visible() {
+		t.Errorf("enlarged from %v to %v; others shown: %v", small, got, r.grid.maps[0][0].Visible())
+	}
+	r.win.Canvas().Focus(r.grid.maps[1][2])
+	r.grid.maps[1][2].TypedKey(&fyne.KeyEvent{Name: fyne.KeyEscape})
+	if got := r.grid.maps[1][2].Size().Width; got != small || !r.grid.maps[0][0].Visible() || !r.grid.ledger.lines[0].name.Visible() {
+		t.Errorf("back at %v, want %v and all six", got, small)
+	}
+}
+
+func TestEscapeClosesTheDialogOnTop(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	r.addTier()
+	if len(r.dialogs) != 1 {
+		t.Fatalf("%d dialogs open", len(r.dialogs))
+	}
+	field, ok := r.win.Canvas().Focused().(*formEntry)
+	if !ok {
+		t.Fatal("the form's first field has not the focus")
+	}
+	field.TypedKey(&fyne.KeyEvent{Name: fyne.KeyEscape})
+	if len(r.dialogs) != 0 || r.bench.Doc.Modified() {
+		t.Errorf("after Escape %d dialogs, modified %v", len(r.dialogs), r.bench.Doc.Modified())
+	}
+}
