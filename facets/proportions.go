@@ -128,12 +128,14 @@ func ParseProportions(outline, pairs string) (*Proportions, error) {
 		name, text, ok := strings.Cut(pair, "=")
 		name, text = strings.TrimSpace(name), strings.TrimSpace(text)
 		if !ok {
-			faults = append(faults, &Fault{File: file, Field: "value", Got: clip(pair), Why: "this is no pair of name and value",
+			faults = append(faults, &Fault{File: file, Field: "value", Got: clip(pair),
+				Why:    "this is no pair of name and value",
 				Remedy: "write it like table=56"})
 			continue
 		}
 		if _, twice := p.Values[name]; twice {
-			faults = append(faults, &Fault{File: file, Field: clip(name), Got: clip(text), Why: "this value is given twice", Remedy: "leave one out"})
+			faults = append(faults, &Fault{File: file, Field: clip(name), Got: clip(text),
+				Why: "this value is given twice", Remedy: "leave one out"})
 			continue
 		}
 		spread, f := parseSpread(clip(name), text)
@@ -201,14 +203,18 @@ func (p *Proportions) check() Faults {
 		got := v.String()
 		switch {
 		case !(v.Min >= k.Low && v.Max <= k.High):
-			faults = append(faults, &Fault{File: file, Field: name, Got: got, Why: "out of range", Remedy: "use " + k.span() + ": " + k.Meaning})
+			faults = append(faults, &Fault{File: file, Field: name, Got: got, Why: "out of range",
+				Remedy: "use " + k.span() + ": " + k.Meaning})
 		case !(v.Min <= v.Mean && v.Mean <= v.Max):
-			faults = append(faults, &Fault{File: file, Field: name, Got: got, Why: "least, mean and greatest are out of order",
+			faults = append(faults, &Fault{File: file, Field: name, Got: got,
+				Why:    "least, mean and greatest are out of order",
 				Remedy: "write least..mean..greatest"})
 		case v.varies() && !k.Varies:
-			faults = append(faults, &Fault{File: file, Field: name, Got: got, Why: "this value is one for the whole stone", Remedy: "give one number"})
+			faults = append(faults, &Fault{File: file, Field: name, Got: got,
+				Why: "this value is one for the whole stone", Remedy: "give one number"})
 		case name == "steps" && v.Mean != math.Trunc(v.Mean):
-			faults = append(faults, &Fault{File: file, Field: name, Got: got, Why: "steps are counted", Remedy: "give a whole number"})
+			faults = append(faults, &Fault{File: file, Field: name, Got: got, Why: "steps are counted",
+				Remedy: "give a whole number"})
 		}
 	}
 	return faults
@@ -325,7 +331,8 @@ func (p *Proportions) round(name string, azimuths []float64) ([]float64, *Fault)
 func (p *Proportions) Stone(widthMM float64) (*Stone, error) {
 	faults := p.check()
 	if !(widthMM > 0) || widthMM > 1e4 {
-		faults = append(faults, &Fault{File: "proportions", Field: "width", Got: fmt.Sprint(widthMM), Why: "a width is a positive number of millimetres",
+		faults = append(faults, &Fault{File: "proportions", Field: "width", Got: fmt.Sprint(widthMM),
+			Why:    "a width is a positive number of millimetres",
 			Remedy: "give the stone's width, such as 6.5"})
 	}
 	if err := faults.Err(); err != nil {
@@ -346,7 +353,8 @@ func (p *Proportions) Stone(widthMM float64) (*Stone, error) {
 	}
 	s, err := FromPlanes(p.Outline, planes)
 	if err != nil {
-		return nil, &Fault{File: "proportions", Field: "values", Got: p.String(), Why: err.Error(), Remedy: "use values nearer to the usual ones"}
+		return nil, &Fault{File: "proportions", Field: "values", Got: p.String(), Why: err.Error(),
+			Remedy: "use values nearer to the usual ones"}
 	}
 	needed := slices.DeleteFunc(planes, func(pl Plane) bool { return pl.Side == Girdle })
 	if f := allPresent(s, needed); f != nil {
@@ -416,6 +424,7 @@ func allPresent(s *Stone, planes []Plane) *Fault {
 	for _, tier := range order {
 		parts = append(parts, fmt.Sprintf("%d of tier %q", gone[tier], tier))
 	}
-	return &Fault{File: "proportions", Field: "values", Why: "these values leave no room for some facets: " + strings.Join(parts, ", "),
+	return &Fault{File: "proportions", Field: "values",
+		Why:    "these values leave no room for some facets: " + strings.Join(parts, ", "),
 		Remedy: "use values nearer to the usual ones"}
 }

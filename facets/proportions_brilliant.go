@@ -101,14 +101,16 @@ func (p *Proportions) brilliantPlanes() ([]Plane, *Fault) {
 
 	var planes []Plane
 	add := func(tier string, side Side, normal mgl64.Vec3, through mgl64.Vec3) {
-		planes = append(planes, Plane{Tier: tier, Index: indexOf(normal), Side: side, Normal: normal, Distance: normal.Dot(through)})
+		planes = append(planes, Plane{Tier: tier, Index: indexOf(normal), Side: side, Normal: normal,
+			Distance: normal.Dot(through)})
 	}
 	add(tierTable, Table, mgl64.Vec3{0, 0, 1}, mgl64.Vec3{0, 0, tableHeight})
 	crown, pavilion := make([]Plane, n), make([]Plane, n)
 	corners := make([]mgl64.Vec3, n)
 	for i, m := range b.mains {
 		corners[i] = m.at.Mul(share("table", i)).Vec3(tableHeight)
-		crown[i] = leaning(tierCrownMain, Crown, m.above, slope("crown", i)*b.crownReference/m.crown().reach(), m.at.Vec3(upper[i]))
+		crown[i] = leaning(tierCrownMain, Crown, m.above, slope("crown", i)*b.crownReference/m.crown().reach(),
+			m.at.Vec3(upper[i]))
 		end := b.keelEnd(m.below)
 		pavilion[i] = leaning(tierPavilionMain, Pavilion, m.below,
 			slope("pavilion", i)*b.pavilionReference/(m.pavilion().reach()-end.Dot(m.below)), m.at.Vec3(lower[i]))
@@ -132,7 +134,8 @@ func (p *Proportions) brilliantPlanes() ([]Plane, *Fault) {
 		high := (upper[i] + upper[j]) / 2
 		end := b.keelEnd(from.below.Add(to.below))
 		lowAlong := crossing2(from.pavilion(), to.pavilion()).Sub(end).Normalize()
-		lowTip := onMains(pavilion[i], pavilion[j], lowAlong, lowAlong.Dot(end)+(1-share("lower", i))*lowAlong.Dot(girdlePoint.Sub(end)))
+		lowTip := onMains(pavilion[i], pavilion[j], lowAlong, lowAlong.Dot(end)+(1-share("lower",
+			i))*lowAlong.Dot(girdlePoint.Sub(end)))
 		low := (lower[i] + lower[j]) / 2
 		if b.straight[i] {
 			planes = append(planes,

@@ -80,7 +80,8 @@ func (p *Proportions) stepPlanes() ([]Plane, *Fault) {
 	}
 	tableHeight := meanGirdle/2 + meanRise
 	culet := p.value("culet").Mean / 100
-	planes := []Plane{{Tier: tierTable, Index: math.NaN(), Side: Table, Normal: mgl64.Vec3{0, 0, 1}, Distance: tableHeight}}
+	planes := []Plane{{Tier: tierTable, Index: math.NaN(), Side: Table, Normal: mgl64.Vec3{0, 0, 1},
+		Distance: tableHeight}}
 	deepest := -meanGirdle / 2
 	for i, s := range sides {
 		// at is the point of the side's own middle line at an inset and a height.
@@ -88,13 +89,15 @@ func (p *Proportions) stepPlanes() ([]Plane, *Fault) {
 		z := tableHeight - rise[i]
 		width := (1 - values["table"][i]/100) * half / float64(steps)
 		for j := range steps {
-			planes = append(planes, leaning(stepTier("crown", j), Crown, s.faces, tan(crownAngle(i, j))/s.rate, at(float64(j)*width, z)))
+			planes = append(planes, leaning(stepTier("crown", j), Crown, s.faces, tan(crownAngle(i, j))/s.rate,
+				at(float64(j)*width, z)))
 			z += width * tan(crownAngle(i, j))
 		}
 		z = tableHeight - rise[i] - values["girdle"][i]/100
 		width = half / float64(steps)
 		for j := range steps {
-			planes = append(planes, leaning(stepTier("pavilion", j), Pavilion, s.faces, tan(pavilionAngle(i, j))/s.rate, at(float64(j)*width, z)))
+			planes = append(planes, leaning(stepTier("pavilion", j), Pavilion, s.faces, tan(pavilionAngle(i,
+				j))/s.rate, at(float64(j)*width, z)))
 			z -= width * tan(pavilionAngle(i, j))
 			// The culet lies where the frame has shrunk to its width.
 			inset := min(width, max(0, (1-culet)*half-float64(j)*width))
@@ -102,11 +105,13 @@ func (p *Proportions) stepPlanes() ([]Plane, *Fault) {
 		}
 		if meanGirdle > 0 {
 			n := s.faces.Vec3(0)
-			planes = append(planes, Plane{Tier: tierGirdle, Index: indexOf(n), Side: Girdle, Normal: n, Distance: s.reach})
+			planes = append(planes, Plane{Tier: tierGirdle, Index: indexOf(n), Side: Girdle, Normal: n,
+				Distance: s.reach})
 		}
 	}
 	if culet > 0 {
-		planes = append(planes, Plane{Tier: tierCulet, Index: math.NaN(), Side: Pavilion, Normal: mgl64.Vec3{0, 0, -1}, Distance: -deepest})
+		planes = append(planes, Plane{Tier: tierCulet, Index: math.NaN(), Side: Pavilion,
+			Normal: mgl64.Vec3{0, 0, -1}, Distance: -deepest})
 	}
 	return planes, nil
 }

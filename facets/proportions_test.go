@@ -155,7 +155,8 @@ func TestHeightsOfHistoricProportions(t *testing.T) {
 		}
 		crown, pavilion := s.Facets[0].Distance-1, -low-1 // less half the girdle
 		if math.Abs(crown-row.crown) > row.within || math.Abs(pavilion-row.pavilion) > row.within {
-			t.Errorf("%s: crown %.2f, pavilion %.2f; printed %.1f, %.1f", row.name, crown, pavilion, row.crown, row.pavilion)
+			t.Errorf("%s: crown %.2f, pavilion %.2f; printed %.1f, %.1f", row.name, crown, pavilion, row.crown,
+				row.pavilion)
 		}
 	}
 }
@@ -197,7 +198,8 @@ func TestWeightsAgreeWithTheTradesFormulas(t *testing.T) {
 		got := m.Carats(3.515)
 		want := row.factor * area * m.DepthMM
 		if math.Abs(got/want-1) > within {
-			t.Errorf("%s %s: %.3f ct, the formula says %.3f (%+.1f %%)", row.outline, row.pairs, got, want, 100*(got/want-1))
+			t.Errorf("%s %s: %.3f ct, the formula says %.3f (%+.1f %%)", row.outline, row.pairs, got, want,
+				100*(got/want-1))
 		}
 	}
 }
@@ -283,7 +285,8 @@ func TestProportionsAreMeasuredBack(t *testing.T) {
 		// The table's own corners and the girdle's flats differ by up to the
 		// girdle's sagitta, 0.13 % of the width.
 		if math.Abs(m.TablePercent-row.table) > 0.2 || math.Abs(m.WidthMM-7.3) > 1e-9 || math.Abs(m.Ratio/row.ratio-1) > 0.002 {
-			t.Errorf("%s %s: table %.3f, width %.6f, ratio %.4f", row.outline, row.pairs, m.TablePercent, m.WidthMM, m.Ratio)
+			t.Errorf("%s %s: table %.3f, width %.6f, ratio %.4f", row.outline, row.pairs, m.TablePercent,
+				m.WidthMM, m.Ratio)
 		}
 		if math.Abs(m.GirdlePercent.Max-3) > 1e-6 {
 			t.Errorf("%s: girdle %.6f %%, want 3 at the thick places", row.outline, m.GirdlePercent.Max)

@@ -148,7 +148,8 @@ func (r Rough) Fit(s *Stone) (Fit, error) {
 		}
 	}
 	if best.Scale <= 0 {
-		return Fit{}, &Fault{File: "rough", Field: "size", Got: r.describe(), Why: "nothing is left between the allowance and the places to avoid",
+		return Fit{}, &Fault{File: "rough", Field: "size", Got: r.describe(),
+			Why:    "nothing is left between the allowance and the places to avoid",
 			Remedy: "reduce the allowance or the places to avoid, or take a larger piece"}
 	}
 	m := s.Measure()
@@ -209,7 +210,8 @@ func (r Rough) check() Faults {
 			add("scan", r.Scan.File, fmt.Sprintf("the surface is open at %d edges, so inside and outside cannot be told", r.Scan.OpenEdges+r.Scan.TangledEdges),
 				"close the holes in the scanning program")
 		case r.Scan.Bodies > 1:
-			add("scan", r.Scan.File, fmt.Sprintf("the file holds %d separate surfaces", r.Scan.Bodies), "keep the rough alone")
+			add("scan", r.Scan.File, fmt.Sprintf("the file holds %d separate surfaces", r.Scan.Bodies),
+				"keep the rough alone")
 		}
 	default:
 		add("shape", fmt.Sprint(int(r.Shape)), "this shape is not known", "use box, cylinder, ellipsoid or scan")
@@ -218,16 +220,19 @@ func (r Rough) check() Faults {
 		add("allowance", fmt.Sprint(r.Allowance), "this is not a length", "give millimetres")
 	}
 	if n := len(r.AvoidPlanes) + len(r.AvoidSpheres); n > maxAvoid {
-		add("avoid", fmt.Sprint(n), fmt.Sprintf("more than %d places to avoid", maxAvoid), "join neighbouring ones into one larger sphere")
+		add("avoid", fmt.Sprint(n), fmt.Sprintf("more than %d places to avoid", maxAvoid),
+			"join neighbouring ones into one larger sphere")
 	}
 	for _, p := range r.AvoidPlanes {
 		if !(math.Abs(p.Normal.Len()-1) < 1e-6) || math.IsNaN(p.Distance) || math.IsInf(p.Distance, 0) {
-			add("avoid", fmt.Sprint(p.Normal, p.Distance), "a plane has a unit normal and a distance", "give the direction across the crack")
+			add("avoid", fmt.Sprint(p.Normal, p.Distance), "a plane has a unit normal and a distance",
+				"give the direction across the crack")
 		}
 	}
 	for _, b := range r.AvoidSpheres {
 		if !finite(b.Centre) || !(b.Radius >= 0) || math.IsInf(b.Radius, 0) {
-			add("avoid", fmt.Sprint(b.Centre, b.Radius), "a sphere has a centre and a radius in millimetres", "measure the inclusion again")
+			add("avoid", fmt.Sprint(b.Centre, b.Radius), "a sphere has a centre and a radius in millimetres",
+				"measure the inclusion again")
 		}
 	}
 	if !finite(r.Axis) || !finite(r.StoneAxis) {

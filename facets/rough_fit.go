@@ -30,7 +30,8 @@ type fitter struct {
 }
 
 func newFitter(r Rough, s *Stone) *fitter {
-	f := &fitter{rough: r, allowance: r.allowance(), centroid: s.centroid(), spheres: slices.Clone(r.AvoidSpheres)}
+	f := &fitter{rough: r, allowance: r.allowance(), centroid: s.centroid(),
+		spheres: slices.Clone(r.AvoidSpheres)}
 	for _, c := range s.Corners {
 		f.corners = append(f.corners, c.Sub(f.centroid))
 	}
@@ -90,7 +91,8 @@ func (f *fitter) takeScan(sc *Scan) {
 	hull := sc.hull
 	if len(hull.triangles) > maxRoughPlanes {
 		hull = innerHull(hull)
-		f.notes = append(f.notes, fmt.Sprintf("The rough's hull was taken inside its scan with %d flats.", len(hull.triangles)))
+		f.notes = append(f.notes, fmt.Sprintf("The rough's hull was taken inside its scan with %d flats.",
+			len(hull.triangles)))
 	}
 	for t := range hull.triangles {
 		n, area := hull.normal(int32(t))
@@ -249,7 +251,8 @@ func (f *fitter) orient(turn mgl64.Mat3) *oriented {
 	far := 100 * f.reach
 	for i, n := range [4]mgl64.Vec3{{1, 1, 1}, {1, -1, -1}, {-1, 1, -1}, {-1, -1, 1}} {
 		n = n.Normalize()
-		o.lp.constraints = append(o.lp.constraints, constraint{a: [4]float64{n[0], n[1], n[2], o.support(n)}, b: far})
+		o.lp.constraints = append(o.lp.constraints, constraint{a: [4]float64{n[0], n[1], n[2], o.support(n)},
+			b: far})
 		o.lp.basis[i] = i
 	}
 	for i := range f.flats {
@@ -515,7 +518,8 @@ func (f *fitter) mostNodes() int {
 
 // options returns the sides from which the place that reaches deepest into the
 // stone may be kept out, nil if none reaches in.
-func (o *oriented) options(scale float64, centre mgl64.Vec3, sides []mgl64.Vec3, supports []float64) []constraint {
+func (o *oriented) options(scale float64, centre mgl64.Vec3, sides []mgl64.Vec3,
+	supports []float64) []constraint {
 	f := o.f
 	deepest := overstep
 	var out []constraint
@@ -556,7 +560,8 @@ func (o *oriented) options(scale float64, centre mgl64.Vec3, sides []mgl64.Vec3,
 }
 
 // sidesOf returns the walls between the stone and a sphere, those that it oversteps least first.
-func (o *oriented) sidesOf(s Sphere, scale float64, centre mgl64.Vec3, sides []mgl64.Vec3, supports []float64) []constraint {
+func (o *oriented) sidesOf(s Sphere, scale float64, centre mgl64.Vec3, sides []mgl64.Vec3,
+	supports []float64) []constraint {
 	keep := s.Radius + o.f.allowance
 	d := s.Centre.Sub(centre)
 	order := make([]int, len(sides))

@@ -111,7 +111,8 @@ func (l *linearProgram) inBasis(j int) bool {
 }
 
 // invert returns the inverse of the leading n x n block, false if it is singular to rounding.
-func invert(m [maxLPVariables][maxLPVariables]float64, n int) (inv [maxLPVariables][maxLPVariables]float64, ok bool) {
+func invert(m [maxLPVariables][maxLPVariables]float64,
+	n int) (inv [maxLPVariables][maxLPVariables]float64, ok bool) {
 	for i := range n {
 		inv[i][i] = 1
 	}

@@ -31,7 +31,8 @@ func solidOf(t testing.TB, planes ...[4]float64) *Stone {
 
 // cuboid is a box of the given edges, its middle away from the origin.
 func cuboid(t testing.TB, x, y, z float64) *Stone {
-	return solidOf(t, [4]float64{1, 0, 0, x/2 + 1}, [4]float64{-1, 0, 0, x/2 - 1}, [4]float64{0, 1, 0, y / 2}, [4]float64{0, -1, 0, y / 2},
+	return solidOf(t, [4]float64{1, 0, 0, x/2 + 1}, [4]float64{-1, 0, 0, x/2 - 1}, [4]float64{0, 1, 0,
+		y / 2}, [4]float64{0, -1, 0, y / 2},
 		[4]float64{0, 0, 1, z/2 - 2}, [4]float64{0, 0, -1, z/2 + 2})
 }
 
@@ -46,7 +47,8 @@ func octahedron(t testing.TB) *Stone {
 
 // tetrahedron has corners at alternate corners of the cube of edge 2: edge sqrt 8.
 func tetrahedron(t testing.TB) *Stone {
-	return solidOf(t, [4]float64{1, 1, 1, 1}, [4]float64{1, -1, -1, 1}, [4]float64{-1, 1, -1, 1}, [4]float64{-1, -1, 1, 1})
+	return solidOf(t, [4]float64{1, 1, 1, 1}, [4]float64{1, -1, -1, 1}, [4]float64{-1, 1, -1, 1},
+		[4]float64{-1, -1, 1, 1})
 }
 
 func mustFit(t testing.TB, r Rough, s *Stone) Fit {
@@ -145,28 +147,42 @@ func TestLargestStoneInSimpleRough(t *testing.T) {
 		within float64 // relative: exact orientations are among those tried, others are approached
 		source string
 	}{
-		{"cube in cube", Rough{Shape: Box, Size: mgl64.Vec3{10, 10, 10}, Allowance: -1}, cuboid(t, 2, 2, 2), 5, 1e-6, "identity"},
-		{"default allowance", Rough{Shape: Box, Size: mgl64.Vec3{10, 10, 10}}, cuboid(t, 2, 2, 2), 4.7, 1e-6, "(10 - 2 x 0.3) / 2"},
-		{"slab in box", Rough{Shape: Box, Size: mgl64.Vec3{4, 6, 9}, Allowance: -1}, cuboid(t, 9, 4, 6), 1, 1e-6, "identity, turned"},
-		{"cube in sphere", Rough{Shape: Ellipsoid, Size: mgl64.Vec3{10, 10, 10}, Allowance: -1}, cuboid(t, 2, 2, 2), 5 / math.Sqrt(3), 2e-5,
+		{"cube in cube", Rough{Shape: Box, Size: mgl64.Vec3{10, 10, 10},
+			Allowance: -1}, cuboid(t, 2, 2, 2), 5, 1e-6, "identity"},
+		{"default allowance", Rough{Shape: Box, Size: mgl64.Vec3{10, 10, 10}}, cuboid(t, 2, 2, 2), 4.7, 1e-6,
+			"(10 - 2 x 0.3) / 2"},
+		{"slab in box", Rough{Shape: Box, Size: mgl64.Vec3{4, 6, 9},
+			Allowance: -1}, cuboid(t, 9, 4, 6), 1, 1e-6, "identity, turned"},
+		{"cube in sphere", Rough{Shape: Ellipsoid, Size: mgl64.Vec3{10, 10, 10},
+			Allowance: -1}, cuboid(t, 2, 2, 2), 5 / math.Sqrt(3), 2e-5,
 			"the cube's diagonal is the diameter"},
-		{"cube in sphere less allowance", Rough{Shape: Ellipsoid, Size: mgl64.Vec3{10, 10, 10}, Allowance: 0.5}, cuboid(t, 2, 2, 2), 4.5 / math.Sqrt(3), 2e-5,
+		{"cube in sphere less allowance", Rough{Shape: Ellipsoid, Size: mgl64.Vec3{10, 10, 10},
+			Allowance: 0.5}, cuboid(t, 2, 2, 2), 4.5 / math.Sqrt(3), 2e-5,
 			"the allowance shrinks the sphere"},
-		{"box in ellipsoid", Rough{Shape: Ellipsoid, Size: mgl64.Vec3{12, 8, 6}, Allowance: -1}, cuboid(t, 6, 4, 3), 2 / math.Sqrt(3), 2e-5,
+		{"box in ellipsoid", Rough{Shape: Ellipsoid, Size: mgl64.Vec3{12, 8, 6},
+			Allowance: -1}, cuboid(t, 6, 4, 3), 2 / math.Sqrt(3), 2e-5,
 			"the stretched cube in the sphere"},
-		{"cube in cylinder", Rough{Shape: Cylinder, Size: mgl64.Vec3{10, 0, 10}, Allowance: -1}, cuboid(t, 2, 2, 2), 5 / math.Sqrt2, 2e-5,
+		{"cube in cylinder", Rough{Shape: Cylinder, Size: mgl64.Vec3{10, 0, 10},
+			Allowance: -1}, cuboid(t, 2, 2, 2), 5 / math.Sqrt2, 2e-5,
 			"the square's diagonal is the diameter"},
-		{"octahedron in cube", Rough{Shape: Box, Size: mgl64.Vec3{1, 1, 1}, Allowance: -1}, octahedron(t), 0.75, 2e-3,
+		{"octahedron in cube", Rough{Shape: Box, Size: mgl64.Vec3{1, 1, 1},
+			Allowance: -1}, octahedron(t), 0.75, 2e-3,
 			"edge 3 sqrt 2 / 4 (Croft, Proc. London Math. Soc. 41, 279, 1980; value from memory)"},
-		{"tetrahedron in cube", Rough{Shape: Box, Size: mgl64.Vec3{1, 1, 1}, Allowance: -1}, tetrahedron(t), 0.5, 2e-3,
+		{"tetrahedron in cube", Rough{Shape: Box, Size: mgl64.Vec3{1, 1, 1},
+			Allowance: -1}, tetrahedron(t), 0.5, 2e-3,
 			"edge sqrt 2 (Croft 1980; value from memory)"},
-		{"crack across", Rough{Shape: Box, Size: mgl64.Vec3{10, 4, 4}, Allowance: -1, AvoidPlanes: []Plane{{Normal: mgl64.Vec3{1, 0, 0}, Distance: 2}}},
+		{"crack across", Rough{Shape: Box, Size: mgl64.Vec3{10, 4, 4}, Allowance: -1,
+			AvoidPlanes: []Plane{{Normal: mgl64.Vec3{1, 0, 0}, Distance: 2}}},
 			cuboid(t, 4, 2, 2), 1.75, 1e-6, "7 mm of length are left on one side"},
-		{"crack with allowance", Rough{Shape: Box, Size: mgl64.Vec3{10, 6, 6}, Allowance: 0.5, AvoidPlanes: []Plane{{Normal: mgl64.Vec3{1, 0, 0}, Distance: 2}}},
+		{"crack with allowance", Rough{Shape: Box, Size: mgl64.Vec3{10, 6, 6}, Allowance: 0.5,
+			AvoidPlanes: []Plane{{Normal: mgl64.Vec3{1, 0, 0}, Distance: 2}}},
 			cuboid(t, 4, 2, 2), 1.5, 1e-6, "7 less 2 x 0.5"},
-		{"inclusion in the middle", Rough{Shape: Box, Size: mgl64.Vec3{10, 10, 10}, Allowance: -1, AvoidSpheres: []Sphere{{mgl64.Vec3{}, 1}}},
-			cuboid(t, 2, 2, 2), (5 - 1/math.Sqrt(3)) / 2, 1e-6, "a cube in the corner whose own corner touches the sphere"},
-		{"inclusion near a face", Rough{Shape: Box, Size: mgl64.Vec3{10, 10, 10}, Allowance: -1, AvoidSpheres: []Sphere{{mgl64.Vec3{0, 0, 4.8}, 0.2}}},
+		{"inclusion in the middle", Rough{Shape: Box, Size: mgl64.Vec3{10, 10, 10}, Allowance: -1,
+			AvoidSpheres: []Sphere{{mgl64.Vec3{}, 1}}},
+			cuboid(t, 2, 2, 2), (5 - 1/math.Sqrt(3)) / 2, 1e-6,
+			"a cube in the corner whose own corner touches the sphere"},
+		{"inclusion near a face", Rough{Shape: Box, Size: mgl64.Vec3{10, 10, 10}, Allowance: -1,
+			AvoidSpheres: []Sphere{{mgl64.Vec3{0, 0, 4.8}, 0.2}}},
 			cuboid(t, 2, 2, 2), 4.8, 1e-6, "0.4 mm of the height are lost, or as much at a side"},
 	} {
 		t.Run(row.name, func(t *testing.T) {
@@ -203,7 +219,8 @@ func TestYieldIsTheShareOfTheRough(t *testing.T) {
 	if math.Abs(f.WidthMM-8) > 1e-4 {
 		t.Errorf("width %.6f mm, want 8", f.WidthMM)
 	}
-	if again := mustFit(t, Rough{Shape: Cylinder, Size: mgl64.Vec3{8.6, 0, 30}, Axis: mgl64.Vec3{0, 0, 1}}, stone); again.Scale != f.Scale || again.Centre != f.Centre {
+	if again := mustFit(t, Rough{Shape: Cylinder, Size: mgl64.Vec3{8.6, 0, 30},
+		Axis: mgl64.Vec3{0, 0, 1}}, stone); again.Scale != f.Scale || again.Centre != f.Centre {
 		t.Error("the same question had another answer")
 	}
 }
@@ -310,8 +327,10 @@ func TestRoughFaultsSayWhatToMend(t *testing.T) {
 		{"plane", Rough{Shape: Box, Size: mgl64.Vec3{5, 5, 5}, AvoidPlanes: []Plane{{}}}, "unit normal"},
 		{"sphere", Rough{Shape: Box, Size: mgl64.Vec3{5, 5, 5}, AvoidSpheres: []Sphere{{Radius: -1}}}, "radius"},
 		{"axis", Rough{Shape: Box, Size: mgl64.Vec3{5, 5, 5}, Axis: mgl64.Vec3{math.NaN(), 0, 1}}, "direction"},
-		{"too many", Rough{Shape: Box, Size: mgl64.Vec3{5, 5, 5}, AvoidSpheres: make([]Sphere, 201)}, "more than 200"},
-		{"nothing left", Rough{Shape: Box, Size: mgl64.Vec3{5, 5, 5}, AvoidSpheres: []Sphere{{Radius: 9}}}, "nothing is left"},
+		{"too many", Rough{Shape: Box, Size: mgl64.Vec3{5, 5, 5},
+			AvoidSpheres: make([]Sphere, 201)}, "more than 200"},
+		{"nothing left", Rough{Shape: Box, Size: mgl64.Vec3{5, 5, 5},
+			AvoidSpheres: []Sphere{{Radius: 9}}}, "nothing is left"},
 	} {
 		_, err := row.rough.Fit(cuboid(t, 2, 2, 2))
 		var f *Fault
@@ -336,7 +355,8 @@ func TestLinearProgramAgreesWithGonum(t *testing.T) {
 		}
 		for range m {
 			n := mgl64.Vec3{rng.NormFloat64(), rng.NormFloat64(), rng.NormFloat64()}.Normalize()
-			l.constraints = append(l.constraints, constraint{[4]float64{n[0], n[1], n[2], 0.5 + rng.Float64()}, 1 + rng.Float64()})
+			l.constraints = append(l.constraints, constraint{[4]float64{n[0], n[1], n[2], 0.5 + rng.Float64()},
+				1 + rng.Float64()})
 		}
 		if l.solve() != lpOptimal {
 			t.Fatalf("try %d did not end", try)
@@ -359,9 +379,10 @@ func TestLinearProgramAgreesWithGonum(t *testing.T) {
 		}
 	}
 	// No point obeys x <= -1 and -x <= -1.
-	l := linearProgram{variables: 3, goal: [4]float64{0, 0, 1}, basis: [4]int{0, 1, 2}, slack: 1e-9, constraints: []constraint{
-		{[4]float64{1, 0, 0}, 9}, {[4]float64{0, 1, 0}, 9}, {[4]float64{0, 0, 1}, 9},
-		{[4]float64{1, 0, 0}, -1}, {[4]float64{-1, 0, 0}, -1}}}
+	l := linearProgram{variables: 3, goal: [4]float64{0, 0, 1}, basis: [4]int{0, 1, 2}, slack: 1e-9,
+		constraints: []constraint{
+			{[4]float64{1, 0, 0}, 9}, {[4]float64{0, 1, 0}, 9}, {[4]float64{0, 0, 1}, 9},
+			{[4]float64{1, 0, 0}, -1}, {[4]float64{-1, 0, 0}, -1}}}
 	if got := l.solve(); got != lpEmpty {
 		t.Errorf("contradicting walls ended with status %d", got)
 	}
@@ -372,7 +393,8 @@ func BenchmarkFit(b *testing.B) {
 	for name, r := range map[string]Rough{
 		"box":       {Shape: Box, Size: mgl64.Vec3{9, 9, 7}},
 		"ellipsoid": {Shape: Ellipsoid, Size: mgl64.Vec3{10, 9, 8}},
-		"spheres":   {Shape: Box, Size: mgl64.Vec3{9, 9, 7}, AvoidSpheres: []Sphere{{mgl64.Vec3{1, 0, 0}, 0.5}, {mgl64.Vec3{-2, 2, 1}, 0.3}}},
+		"spheres": {Shape: Box, Size: mgl64.Vec3{9, 9, 7},
+			AvoidSpheres: []Sphere{{mgl64.Vec3{1, 0, 0}, 0.5}, {mgl64.Vec3{-2, 2, 1}, 0.3}}},
 	} {
 		b.Run(name, func(b *testing.B) {
 			b.ReportAllocs()

@@ -86,7 +86,8 @@ func ReadScan(r io.Reader, file string, opts ScanOptions) (*Scan, error) {
 		scale = 1
 	}
 	if !(scale > 0) || math.IsInf(scale, 0) {
-		return nil, &Fault{File: file, Field: "scale", Got: fmt.Sprint(opts.Scale), Why: "a scale is a positive number",
+		return nil, &Fault{File: file, Field: "scale", Got: fmt.Sprint(opts.Scale),
+			Why:    "a scale is a positive number",
 			Remedy: "give the millimetres in one unit of the file: 1 for mm, 25.4 for inches, 1000 for metres"}
 	}
 	raw, err := readMesh(r, file)
@@ -94,9 +95,11 @@ func ReadScan(r io.Reader, file string, opts ScanOptions) (*Scan, error) {
 		return nil, err
 	}
 	if len(raw.triangles) == 0 {
-		return nil, &Fault{File: file, Field: "scan", Why: "the file holds no triangles", Remedy: "export the surface, not only its points"}
+		return nil, &Fault{File: file, Field: "scan", Why: "the file holds no triangles",
+			Remedy: "export the surface, not only its points"}
 	}
-	sc := &Scan{File: file, Format: raw.format, Scale: scale, Resolution: raw.resolution() * scale, Notes: raw.notes}
+	sc := &Scan{File: file, Format: raw.format, Scale: scale, Resolution: raw.resolution() * scale,
+		Notes: raw.notes}
 	for i := range raw.points {
 		raw.points[i] = raw.points[i].Mul(scale)
 	}
@@ -145,7 +148,8 @@ func (sc *Scan) join(raw *rawMesh) error {
 			break
 		}
 	}
-	flat := &Fault{File: sc.File, Field: "scan", Why: "all corners lie in one plane or point", Remedy: "export the whole surface of the stone"}
+	flat := &Fault{File: sc.File, Field: "scan", Why: "all corners lie in one plane or point",
+		Remedy: "export the whole surface of the stone"}
 	if sc.mesh == nil {
 		return flat
 	}
@@ -317,7 +321,8 @@ func (sc *Scan) deepest(owner []int32, planes []flat, reach float64) Dent {
 			continue
 		}
 		c := sc.mesh.triangles[t]
-		a, ab, ac := sc.mesh.points[c[0]], sc.mesh.points[c[1]].Sub(sc.mesh.points[c[0]]), sc.mesh.points[c[2]].Sub(sc.mesh.points[c[0]])
+		a, ab, ac := sc.mesh.points[c[0]], sc.mesh.points[c[1]].Sub(sc.mesh.points[c[0]]),
+			sc.mesh.points[c[2]].Sub(sc.mesh.points[c[0]])
 		for u := range steps + 1 {
 			for v := range steps + 1 - u {
 				p := a.Add(ab.Mul(float64(u) / steps)).Add(ac.Mul(float64(v) / steps))
@@ -407,7 +412,8 @@ func (sc *Scan) Stone(p ScanPlacement) (*Stone, error) {
 	}
 	if sc.Dent.Depth > 0 {
 		notes = append(notes, fmt.Sprintf("Taken as its convex hull: a dent %.3f mm deep at (%.2f, %.2f, %.2f) mm of the file was filled; %.4f mm³ (%.2f %%) were added.",
-			sc.Dent.Depth, sc.Dent.At[0], sc.Dent.At[1], sc.Dent.At[2], sc.Dent.Added, 100*sc.Dent.Added/sc.HullVolume))
+			sc.Dent.Depth, sc.Dent.At[0], sc.Dent.At[1], sc.Dent.At[2], sc.Dent.Added,
+			100*sc.Dent.Added/sc.HullVolume))
 	}
 	if sc.OpenEdges+sc.TangledEdges > 0 {
 		notes = append(notes, fmt.Sprintf("Taken as its convex hull: the surface had %d open edges, so what the hull added is not known.",

@@ -15,15 +15,24 @@ func TestHullHoldsAllPoints(t *testing.T) {
 		"ball": func() mgl64.Vec3 {
 			return mgl64.Vec3{rng.NormFloat64(), rng.NormFloat64(), rng.NormFloat64()}.Normalize()
 		},
-		"block":   func() mgl64.Vec3 { return mgl64.Vec3{rng.Float64(), rng.Float64(), rng.Float64()} },
-		"lattice": func() mgl64.Vec3 { return mgl64.Vec3{float64(rng.IntN(6)), float64(rng.IntN(6)), float64(rng.IntN(6))} },
+		"block": func() mgl64.Vec3 { return mgl64.Vec3{rng.Float64(), rng.Float64(), rng.Float64()} },
+		"lattice": func() mgl64.Vec3 {
+			return mgl64.Vec3{float64(rng.IntN(6)), float64(rng.IntN(6)),
+				float64(rng.IntN(6))}
+		},
 		"faces": func() mgl64.Vec3 { // of a cube: thousands of points in a plane
 			p := mgl64.Vec3{rng.Float64(), rng.Float64(), rng.Float64()}
 			p[rng.IntN(3)] = float64(rng.IntN(2))
 			return p
 		},
-		"needle":  func() mgl64.Vec3 { return mgl64.Vec3{rng.Float64(), 1e-6 * rng.Float64(), 1e-9 * rng.Float64()} },
-		"pancake": func() mgl64.Vec3 { return mgl64.Vec3{rng.Float64(), rng.Float64(), 1e-9 * float64(rng.IntN(2))} },
+		"needle": func() mgl64.Vec3 {
+			return mgl64.Vec3{rng.Float64(), 1e-6 * rng.Float64(),
+				1e-9 * rng.Float64()}
+		},
+		"pancake": func() mgl64.Vec3 {
+			return mgl64.Vec3{rng.Float64(), rng.Float64(),
+				1e-9 * float64(rng.IntN(2))}
+		},
 	}
 	for name, point := range clouds {
 		for _, n := range []int{5, 50, 2000} {
@@ -92,13 +101,19 @@ func TestExactSideOfNearlyFlatPoints(t *testing.T) {
 		a, b, c, q [3]int64
 		want       int
 	}{
-		{"one step above", [3]int64{-far, -far, 0}, [3]int64{far, -far, 0}, [3]int64{0, far, 0}, [3]int64{0, 0, 1}, 1},
-		{"in the plane", [3]int64{-far, -far, 0}, [3]int64{far, -far, 0}, [3]int64{0, far, 0}, [3]int64{7, 9, 0}, 0},
-		{"one step below", [3]int64{-far, -far, 0}, [3]int64{far, -far, 0}, [3]int64{0, far, 0}, [3]int64{0, 0, -1}, -1},
+		{"one step above", [3]int64{-far, -far, 0}, [3]int64{far, -far, 0}, [3]int64{0, far, 0}, [3]int64{0, 0,
+			1}, 1},
+		{"in the plane", [3]int64{-far, -far, 0}, [3]int64{far, -far, 0}, [3]int64{0, far, 0}, [3]int64{7, 9,
+			0}, 0},
+		{"one step below", [3]int64{-far, -far, 0}, [3]int64{far, -far, 0}, [3]int64{0, far, 0}, [3]int64{0, 0,
+			-1}, -1},
 		// The plane x + y + z = 0 through far corners, one step off it.
-		{"slanted, above", [3]int64{far, -far, 0}, [3]int64{0, far, -far}, [3]int64{-far, 0, far}, [3]int64{1, 0, 0}, 1},
-		{"slanted, in it", [3]int64{far, -far, 0}, [3]int64{0, far, -far}, [3]int64{-far, 0, far}, [3]int64{far, -far + 3, -3}, 0},
-		{"slanted, below", [3]int64{far, -far, 0}, [3]int64{0, far, -far}, [3]int64{-far, 0, far}, [3]int64{far, -far, -1}, -1},
+		{"slanted, above", [3]int64{far, -far, 0}, [3]int64{0, far, -far}, [3]int64{-far, 0, far}, [3]int64{1,
+			0, 0}, 1},
+		{"slanted, in it", [3]int64{far, -far, 0}, [3]int64{0, far, -far}, [3]int64{-far, 0, far}, [3]int64{far,
+			-far + 3, -3}, 0},
+		{"slanted, below", [3]int64{far, -far, 0}, [3]int64{0, far, -far}, [3]int64{-far, 0, far}, [3]int64{far,
+			-far, -1}, -1},
 	} {
 		if got := exactSide(row.a, row.b, row.c, row.q); got != row.want {
 			t.Errorf("%s: %d, want %d", row.name, got, row.want)

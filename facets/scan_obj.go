@@ -51,7 +51,8 @@ func (s *scanReader) readOBJ() (*rawMesh, error) {
 				corners = append(corners, corner)
 			}
 			if len(corners) < 3 {
-				return nil, s.fault(string(line), fmt.Sprintf("a face has %d corners", len(corners)), "give it three or more")
+				return nil, s.fault(string(line), fmt.Sprintf("a face has %d corners", len(corners)),
+					"give it three or more")
 			}
 			if !m.polygon(corners) {
 				return nil, s.fault("", whyTooMany(), remedyThin)
@@ -69,7 +70,8 @@ func (s *scanReader) joinLines(line []byte) ([]byte, error) {
 	for bytes.HasSuffix(line, []byte(`\`)) {
 		s.long = append(append(s.long, line[:len(line)-1]...), ' ')
 		if len(s.long) > maxScanLine {
-			return nil, s.fault("", fmt.Sprintf("a joined line is longer than %d bytes", maxScanLine), "split the face")
+			return nil, s.fault("", fmt.Sprintf("a joined line is longer than %d bytes", maxScanLine),
+				"split the face")
 		}
 		next, err := s.nextLine()
 		if errors.Is(err, io.EOF) {

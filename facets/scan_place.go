@@ -57,7 +57,8 @@ func (s *Stone) moved(turn mgl64.Mat3, shift mgl64.Vec3, table int) (*Stone, err
 		if i == table && n[2] > 0 {
 			n = mgl64.Vec3{0, 0, 1} // by choice of the frame; the turn leaves rounding
 		}
-		planes[i] = Plane{Tier: f.Tier, Index: f.Index, Side: sideOf(n, i == table), Normal: n, Distance: f.Distance + n.Dot(shift)}
+		planes[i] = Plane{Tier: f.Tier, Index: f.Index, Side: sideOf(n, i == table), Normal: n,
+			Distance: f.Distance + n.Dot(shift)}
 	}
 	moved, err := FromPlanes(s.Name, planes)
 	if err != nil {
@@ -218,7 +219,10 @@ func apart(points []mgl64.Vec2) []mgl64.Vec2 {
 		reach = max(reach, p.Len())
 	}
 	near := weldTolerance * reach
-	slices.SortFunc(points, func(a, b mgl64.Vec2) int { return cmp.Or(cmp.Compare(a[0], b[0]), cmp.Compare(a[1], b[1])) })
+	slices.SortFunc(points, func(a, b mgl64.Vec2) int {
+		return cmp.Or(cmp.Compare(a[0], b[0]),
+			cmp.Compare(a[1], b[1]))
+	})
 	var kept []mgl64.Vec2
 	for _, p := range points {
 		twin := false

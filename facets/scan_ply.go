@@ -121,7 +121,8 @@ func (s *scanReader) plyHeader() (format string, elements []plyElement, err erro
 			return "", nil, err
 		}
 		if s.line > plyMaxHeader {
-			return "", nil, s.fault("", fmt.Sprintf("the header has more than %d lines", plyMaxHeader), "export the mesh again")
+			return "", nil, s.fault("", fmt.Sprintf("the header has more than %d lines", plyMaxHeader),
+				"export the mesh again")
 		}
 		words := strings.Fields(string(line))
 		if len(words) == 0 {
@@ -218,7 +219,8 @@ func (s *scanReader) plyText() plyNumber {
 				s.field = field
 				v, err := strconv.ParseFloat(string(field), 64)
 				if err != nil || k < plyFloat32 && v != math.Trunc(v) {
-					return 0, s.fault(string(field), "this is not a number of the type its header promises", "export the mesh again")
+					return 0, s.fault(string(field), "this is not a number of the type its header promises",
+						"export the mesh again")
 				}
 				return v, nil
 			}
@@ -340,7 +342,8 @@ func (s *scanReader) plyFaces(m *rawMesh, e plyElement, next plyNumber) error {
 			}
 		}
 		if !found {
-			return s.plyFault("", "the element face has no list vertex_indices", "export the surface, not only its points")
+			return s.plyFault("", "the element face has no list vertex_indices",
+				"export the surface, not only its points")
 		}
 	}
 	return nil

@@ -95,7 +95,8 @@ func (s *scanReader) fault(got, why, remedy string) *Fault {
 
 // faultAt names a place by byte in a binary file.
 func (s *scanReader) faultAt(offset int64, got, why, remedy string) *Fault {
-	return &Fault{File: s.file, Field: "byte " + strconv.FormatInt(offset, 10), Got: clip(got), Why: why, Remedy: remedy}
+	return &Fault{File: s.file, Field: "byte " + strconv.FormatInt(offset, 10), Got: clip(got), Why: why,
+		Remedy: remedy}
 }
 
 // clip shortens what is quoted from a file to what a person reads.
@@ -143,7 +144,8 @@ func (s *scanReader) readFull(b []byte, what string) error {
 		return fmt.Errorf("%s: %w", s.file, err)
 	}
 	if s.offset > maxScanBytes {
-		return s.faultAt(s.offset, "", fmt.Sprintf("the file is larger than %d MiB", maxScanBytes>>20), "thin the mesh")
+		return s.faultAt(s.offset, "", fmt.Sprintf("the file is larger than %d MiB", maxScanBytes>>20),
+			"thin the mesh")
 	}
 	return nil
 }
@@ -152,10 +154,12 @@ func (s *scanReader) readFull(b []byte, what string) error {
 func (s *scanReader) coordinate(m *rawMesh, field []byte) (float64, error) {
 	v, err := strconv.ParseFloat(string(field), 64)
 	if err != nil || math.IsNaN(v) || math.IsInf(v, 0) {
-		return 0, s.fault(string(field), "this is not a number", "write the coordinate as a decimal number such as 1.25")
+		return 0, s.fault(string(field), "this is not a number",
+			"write the coordinate as a decimal number such as 1.25")
 	}
 	if math.Abs(v) > maxCoordinate {
-		return 0, s.fault(string(field), fmt.Sprintf("a coordinate beyond %g cannot belong to a stone", maxCoordinate),
+		return 0, s.fault(string(field), fmt.Sprintf("a coordinate beyond %g cannot belong to a stone",
+			maxCoordinate),
 			"export the mesh in millimetres")
 	}
 	if m.digits < 17 {
@@ -225,11 +229,13 @@ func readMesh(r io.Reader, file string) (*rawMesh, error) {
 	case bytes.HasPrefix(head, []byte("ply\n")), bytes.HasPrefix(head, []byte("ply\r")):
 		return s.readPLY()
 	case ending == ".ply":
-		return nil, &Fault{File: file, Line: 1, Field: "scan", Got: clip(firstLine(head)), Why: "a PLY file begins with the line ply",
+		return nil, &Fault{File: file, Line: 1, Field: "scan", Got: clip(firstLine(head)),
+			Why:    "a PLY file begins with the line ply",
 			Remedy: "give the file the ending of its true format (.stl, .obj)"}
 	case ending == ".obj":
 		return s.readOBJ()
-	case text && bytes.HasPrefix(trimmed, []byte("solid")) && (len(head) < 1024 || bytes.Contains(head, []byte("facet"))):
+	case text && bytes.HasPrefix(trimmed, []byte("solid")) && (len(head) < 1024 || bytes.Contains(head,
+		[]byte("facet"))):
 		return s.readTextSTL()
 	case ending == ".stl":
 		return s.readBinarySTL()
@@ -238,7 +244,8 @@ func readMesh(r io.Reader, file string) (*rawMesh, error) {
 	case !text:
 		return s.readBinarySTL()
 	}
-	return nil, &Fault{File: file, Line: 1, Field: "scan", Got: clip(firstLine(head)), Why: "this is no STL, OBJ or PLY mesh",
+	return nil, &Fault{File: file, Line: 1, Field: "scan", Got: clip(firstLine(head)),
+		Why:    "this is no STL, OBJ or PLY mesh",
 		Remedy: "export the scan as one of these"}
 }
 

@@ -37,7 +37,8 @@ func (s *scanReader) readBinarySTL() (*rawMesh, error) {
 	}
 	var record [stlTriangleBytes]byte
 	for i := range count {
-		if err := s.readFull(record[:], fmt.Sprintf("triangle %d of the %d its header claims", i+1, count)); err != nil {
+		if err := s.readFull(record[:], fmt.Sprintf("triangle %d of the %d its header claims", i+1,
+			count)); err != nil {
 			return nil, err
 		}
 		base := int32(len(m.points))
@@ -79,7 +80,8 @@ func (s *scanReader) readTextSTL() (*rawMesh, error) {
 		case len(word) == 0:
 		case equalWord(word, "vertex"):
 			if !inLoop {
-				return nil, s.fault(string(line), "a vertex stands outside a loop", "put it between outer loop and endloop")
+				return nil, s.fault(string(line), "a vertex stands outside a loop",
+					"put it between outer loop and endloop")
 			}
 			p, err := s.textPoint(m, rest, "vertex")
 			if err != nil {
@@ -94,7 +96,8 @@ func (s *scanReader) readTextSTL() (*rawMesh, error) {
 			loop, inLoop = loop[:0], true
 		case equalWord(word, "endloop"):
 			if !inLoop || len(loop) != 3 {
-				return nil, s.fault(string(line), fmt.Sprintf("a loop has %d vertices, not three", len(loop)), "export the mesh again")
+				return nil, s.fault(string(line), fmt.Sprintf("a loop has %d vertices, not three", len(loop)),
+					"export the mesh again")
 			}
 			if !m.polygon(loop) {
 				return nil, s.fault("", whyTooMany(), remedyThin)
@@ -123,7 +126,8 @@ func (s *scanReader) textPoint(m *rawMesh, rest []byte, what string) (mgl64.Vec3
 		var field []byte
 		field, rest = cutWord(rest)
 		if len(field) == 0 {
-			return p, s.fault(string(line), fmt.Sprintf("a %s has three coordinates, here are %d", what, axis), remedyTruncated)
+			return p, s.fault(string(line), fmt.Sprintf("a %s has three coordinates, here are %d", what, axis),
+				remedyTruncated)
 		}
 		x, err := s.coordinate(m, field)
 		if err != nil {

@@ -65,7 +65,8 @@ func TestScansOfOtherProgramsGiveTheSameStone(t *testing.T) {
 			t.Errorf("%s: volume %.6f, hull %.6f, VTK says %.6f", row.file, sc.Volume, sc.HullVolume, row.volume)
 		}
 		if sc.OpenEdges != 0 || sc.TangledEdges != 0 || sc.Bodies != 1 || sc.Dent.Depth != 0 {
-			t.Errorf("%s: open %d, tangled %d, bodies %d, dent %+v", row.file, sc.OpenEdges, sc.TangledEdges, sc.Bodies, sc.Dent)
+			t.Errorf("%s: open %d, tangled %d, bodies %d, dent %+v", row.file, sc.OpenEdges, sc.TangledEdges,
+				sc.Bodies, sc.Dent)
 		}
 		for _, f := range sc.Facets {
 			if f.Flatness > place || f.Triangles == 0 {
@@ -200,7 +201,8 @@ func TestToleranceFollowsTheScatterOfTheScan(t *testing.T) {
 			t.Fatal(err)
 		}
 		if len(sc.Facets) != len(stone.Facets) {
-			t.Errorf("noise %g mm: %d facets, want %d (tolerance %g)", noise, len(sc.Facets), len(stone.Facets), sc.Tolerance)
+			t.Errorf("noise %g mm: %d facets, want %d (tolerance %g)", noise, len(sc.Facets), len(stone.Facets),
+				sc.Tolerance)
 			continue
 		}
 		if sc.Dent.Depth != 0 {
@@ -294,7 +296,8 @@ func TestDentBetweenCornersOnTheHull(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if at := sc.Dent.At; math.Abs(sc.Dent.Depth-3) > 1e-5 || math.Abs(at[2]-3) > 1e-5 || math.Abs(min(at[0], at[1])-3) > 1e-5 {
+	if at := sc.Dent.At; math.Abs(sc.Dent.Depth-3) > 1e-5 || math.Abs(at[2]-3) > 1e-5 || math.Abs(min(at[0],
+		at[1])-3) > 1e-5 {
 		t.Errorf("dent %+v, want 3 deep half way up an inner wall", sc.Dent)
 	}
 	if want := 6 * 49.0 / 2; math.Abs(sc.Dent.Added-want) > 1e-3 {
@@ -315,7 +318,8 @@ func TestOpenSurfaceNamesTheHole(t *testing.T) {
 	if sc.OpenEdges != 3 || math.Abs(sc.OpenLength-(4+2*math.Sqrt(8))) > 1e-5 {
 		t.Errorf("%d open edges of %.6f mm, want 3 of %.6f", sc.OpenEdges, sc.OpenLength, 4+2*math.Sqrt(8))
 	}
-	if _, err = sc.Stone(ScanPlacement{}); err == nil || !strings.Contains(err.Error(), "open at 3 edges (9.657 mm)") {
+	if _, err = sc.Stone(ScanPlacement{}); err == nil || !strings.Contains(err.Error(),
+		"open at 3 edges (9.657 mm)") {
 		t.Errorf("an open surface: %v", err)
 	}
 	if s, err := sc.Stone(ScanPlacement{AllowHull: true}); err != nil || len(s.Facets) != 6 {
@@ -356,7 +360,8 @@ func TestTwoBodiesAreRefused(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if _, err := sc.Stone(ScanPlacement{AllowHull: true}); err == nil || !strings.Contains(err.Error(), "2 separate surfaces") {
+	if _, err := sc.Stone(ScanPlacement{AllowHull: true}); err == nil || !strings.Contains(err.Error(),
+		"2 separate surfaces") {
 		t.Errorf("two bodies: %v", err)
 	}
 }
@@ -375,16 +380,19 @@ func TestCurvedSurfaceIsNoStone(t *testing.T) {
 	}
 	at := func(i, j int) int32 { return int32(2 + (i-1)*rings + j%rings) }
 	for j := range rings {
-		ball.triangles = append(ball.triangles, [3]int32{0, at(1, j), at(1, j+1)}, [3]int32{1, at(rings-1, j+1), at(rings-1, j)})
+		ball.triangles = append(ball.triangles, [3]int32{0, at(1, j), at(1, j+1)}, [3]int32{1, at(rings-1, j+1),
+			at(rings-1, j)})
 		for i := 1; i < rings-1; i++ {
-			ball.triangles = append(ball.triangles, [3]int32{at(i, j), at(i+1, j), at(i+1, j+1)}, [3]int32{at(i, j), at(i+1, j+1), at(i, j+1)})
+			ball.triangles = append(ball.triangles, [3]int32{at(i, j), at(i+1, j), at(i+1, j+1)}, [3]int32{at(i,
+				j), at(i+1, j+1), at(i, j+1)})
 		}
 	}
 	sc, err := ReadScan(bytes.NewReader(binarySTL(ball)), "bead.stl", ScanOptions{})
 	if err != nil {
 		t.Fatal(err)
 	}
-	if _, err := sc.Stone(ScanPlacement{AllowHull: true}); err == nil || !strings.Contains(err.Error(), "not made of flats") {
+	if _, err := sc.Stone(ScanPlacement{AllowHull: true}); err == nil || !strings.Contains(err.Error(),
+		"not made of flats") {
 		t.Errorf("a bead gave %d flats at %g mm and %v", len(sc.Facets), sc.Tolerance, err)
 	}
 }
@@ -486,30 +494,31 @@ func hostileScans() map[string][]byte {
 	const xyz = "property float x\nproperty float y\nproperty float z\n"
 	const corners = "property list uchar int vertex_indices\n"
 	return map[string][]byte{
-		"empty.stl":      {},
-		"claim.stl":      claim,
-		"modest.stl":     modest,
-		"short.stl":      square[:len(square)-7],
-		"head.stl":       square[:50],
-		"nan.stl":        nan,
-		"huge.stl":       huge,
-		"cut-text.stl":   []byte("solid x\nfacet normal 0 0 1\nouter loop\nvertex 0 0 0\nvertex 1 0 0\n"),
-		"word.stl":       []byte("solid x\nfacet normal 0 0 1\nouter loop\nvertex 0 0 zero\n"),
-		"four.stl":       []byte("solid x\nfacet normal 0 0 1\nouter loop\nvertex 0 0 0\nvertex 1 0 0\nvertex 1 1 0\nvertex 0 1 0\nendloop\n"),
-		"outside.stl":    []byte("solid x\nfacet\nvertex 0 0 0\nendsolid\n"),
-		"long.obj":       []byte("v " + strings.Repeat("1", 100_000)),
-		"joined.obj":     []byte("f " + strings.Repeat("1 \\\n", 100_000)),
-		"index.obj":      []byte("v 0 0 0\nv 1 0 0\nf 1 2 3\n"),
-		"zero.obj":       []byte("v 0 0 0\nv 1 0 0\nv 0 1 0\nf 0 1 2\n"),
-		"inf.obj":        []byte("v 0 0 inf\n"),
-		"points.obj":     []byte("v 0 0 0\nv 1 0 0\n"),
-		"flat.obj":       []byte("v 0 0 0\nv 1 0 0\nv 0 1 0\nv 1 1 0\nf 1 2 4 3\n"),
-		"promise.obj":    []byte("v 0 0 0\nf 1 \\"),
-		"claim.ply":      ply("element vertex 4294967296\n"+xyz+"element face 1\n"+corners, ""),
-		"faces.ply":      ply("element vertex 3\n"+xyz+"element face 4294967296\n"+corners, "0 0 0\n"),
-		"other.ply":      ply("element vertex 3\n"+xyz+"element camera 4294967296\nproperty float x\n", "0 0 0\n"),
-		"list.ply":       ply("element vertex 3\n"+xyz+"element face 1\nproperty list uint int vertex_indices\n", "0 0 0\n1 0 0\n0 1 0\n4294967295 0 1 2\n"),
-		"index.ply":      ply("element vertex 3\n"+xyz+"element face 1\n"+corners, "0 0 0\n1 0 0\n0 1 0\n3 0 1 7\n"),
+		"empty.stl":    {},
+		"claim.stl":    claim,
+		"modest.stl":   modest,
+		"short.stl":    square[:len(square)-7],
+		"head.stl":     square[:50],
+		"nan.stl":      nan,
+		"huge.stl":     huge,
+		"cut-text.stl": []byte("solid x\nfacet normal 0 0 1\nouter loop\nvertex 0 0 0\nvertex 1 0 0\n"),
+		"word.stl":     []byte("solid x\nfacet normal 0 0 1\nouter loop\nvertex 0 0 zero\n"),
+		"four.stl":     []byte("solid x\nfacet normal 0 0 1\nouter loop\nvertex 0 0 0\nvertex 1 0 0\nvertex 1 1 0\nvertex 0 1 0\nendloop\n"),
+		"outside.stl":  []byte("solid x\nfacet\nvertex 0 0 0\nendsolid\n"),
+		"long.obj":     []byte("v " + strings.Repeat("1", 100_000)),
+		"joined.obj":   []byte("f " + strings.Repeat("1 \\\n", 100_000)),
+		"index.obj":    []byte("v 0 0 0\nv 1 0 0\nf 1 2 3\n"),
+		"zero.obj":     []byte("v 0 0 0\nv 1 0 0\nv 0 1 0\nf 0 1 2\n"),
+		"inf.obj":      []byte("v 0 0 inf\n"),
+		"points.obj":   []byte("v 0 0 0\nv 1 0 0\n"),
+		"flat.obj":     []byte("v 0 0 0\nv 1 0 0\nv 0 1 0\nv 1 1 0\nf 1 2 4 3\n"),
+		"promise.obj":  []byte("v 0 0 0\nf 1 \\"),
+		"claim.ply":    ply("element vertex 4294967296\n"+xyz+"element face 1\n"+corners, ""),
+		"faces.ply":    ply("element vertex 3\n"+xyz+"element face 4294967296\n"+corners, "0 0 0\n"),
+		"other.ply":    ply("element vertex 3\n"+xyz+"element camera 4294967296\nproperty float x\n", "0 0 0\n"),
+		"list.ply":     ply("element vertex 3\n"+xyz+"element face 1\nproperty list uint int vertex_indices\n", "0 0 0\n1 0 0\n0 1 0\n4294967295 0 1 2\n"),
+		"index.ply": ply("element vertex 3\n"+xyz+"element face 1\n"+corners,
+			"0 0 0\n1 0 0\n0 1 0\n3 0 1 7\n"),
 		"noz.ply":        ply("element vertex 3\nproperty float x\nelement face 1\n"+corners, "0\n1\n2\n3 0 1 2\n"),
 		"noface.ply":     ply("element vertex 1\n"+xyz, "0 0 0\n"),
 		"cut.ply":        ply("element vertex 3\n"+xyz+"element face 1\n"+corners, "0 0 0\n1 0"),
@@ -540,7 +549,8 @@ func TestHostileScansEndInAFaultWithAPlace(t *testing.T) {
 			t.Errorf("%s: %v is no fault", name, err)
 			continue
 		}
-		if f.File != name || f.Why == "" || f.Remedy == "" || f.Line == 0 && !strings.HasPrefix(f.Field, "byte ") && f.Field != "scan" {
+		if f.File != name || f.Why == "" || f.Remedy == "" || f.Line == 0 && !strings.HasPrefix(f.Field,
+			"byte ") && f.Field != "scan" {
 			t.Errorf("%s: %v names no place or remedy", name, err)
 		}
 		// The reader's own buffers and lines, never what a header claims.
@@ -567,7 +577,8 @@ func TestFaultNamesByteOrLine(t *testing.T) {
 }
 
 func TestEveryTruncationIsSurvived(t *testing.T) {
-	for _, name := range []string{"square-vtk-text.stl", "square-vtk-binary.stl", "square-vtk-text.ply", "square-vtk-little.ply",
+	for _, name := range []string{"square-vtk-text.stl", "square-vtk-binary.stl", "square-vtk-text.ply",
+		"square-vtk-little.ply",
 		"square-vtk-big.ply", "square-vtk.obj"} {
 		data, err := os.ReadFile("testdata/scans/" + name)
 		if err != nil {
