@@ -5,7 +5,9 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 
 	"pavilight/facets"
@@ -69,24 +71,67 @@ func MaterialOf(ref facets.MaterialRef) (*gems.Material, error) {
 	return gems.Plain(ref.Name, ref.Index, ref.Density)
 }
 
-// Open reads and solves the plan at path on another goroutine and puts it on the
-// bench. If it cannot be had the bench stays as it is. done is told how it went.
+// Open reads and solves the plan or scan at path on another goroutine and puts it on
+// the bench. If it cannot be had the bench stays as it is. A scan becomes a plan
+// that cuts the same solid, of the material and for the gear that were on the bench,
+// and is not saved yet. done is told how it went.
 func (b *Bench) Open(path string, done func(error)) {
+	before := b.Doc.Plan()
 	go func() {
-		plan, err := facets.OpenPlan(path)
-		if err == nil {
-			_, err = b.subject(plan)
-		}
+		doc, err := b.read(path, before)
 		b.do(func() {
 			if err == nil {
-				if whole, e := filepath.Abs(path); e == nil {
-					path = whole
-				}
-				b.put(NewDocument(plan, path))
+				b.put(doc)
 			}
 			done(err)
 		})
 	}()
+}
+
+// ScanExtensions are the endings of the names of scans, in lower case.
+func ScanExtensions() []string { return []string{".stl", ".obj", ".ply"} }
+
+// read returns the document of a plan or scan that makes a stone.
+func (b *Bench) read(path string, before *facets.Plan) (*Document, error) {
+	if whole, err := filepath.Abs(path); err == nil {
+		path = whole
+	}
+	var doc *Document
+	if slices.Contains(ScanExtensions(), strings.ToLower(filepath.Ext(path))) {
+		plan, err := readScan(path, before)
+		if err != nil {
+			return nil, err
+		}
+		doc = recovered(plan, "")
+	} else {
+		plan, err := facets.OpenPlan(path)
+		if err != nil {
+			return nil, err
+		}
+		doc = NewDocument(plan, path)
+	}
+	_, err := b.subject(doc.Plan())
+	return doc, err
+}
+
+// readScan returns the plan that cuts a scanned solid.
+func readScan(path string, before *facets.Plan) (*facets.Plan, error) {
+	file, err := os.Open(path)
+	if err != nil {
+		return nil, &facets.Fault{File: path, Why: "the file cannot be opened", Remedy: "check its name and folder"}
+	}
+	defer file.Close()
+	scan, err := facets.ReadScan(file, path, facets.ScanOptions{})
+	if err != nil {
+		return nil, err
+	}
+	stone, err := scan.Stone(facets.ScanPlacement{Name: strings.TrimSuffix(filepath.Base(path), filepath.Ext(path))})
+	if err != nil {
+		return nil, err
+	}
+	plan := facets.PlanOf(stone, before.Gear)
+	plan.Material, plan.File = before.Material, path
+	return plan, nil
 }
 
 // OpenText puts a bundled plan on the bench; name is its file's, for messages.
@@ -220,6 +265,12 @@ func InWords(err error) []string {
 			lines[i] = short.Error()
 		}
 		return lines
+	}
+	var one *facets.Fault
+	if errors.As(err, &one) {
+		short := *one
+		short.File = filepath.Base(one.File)
+		return []string{short.Error()}
 	}
 	return strings.Split(err.Error(), "\n")
 }

@@ -1,6 +1,7 @@
 package model
 
 import (
+	"errors"
 	"io/fs"
 	"math"
 	"os"
@@ -377,4 +378,44 @@ func TestChangesByOtherHandsAreToldOnce(t *testing.T) {
 	if got := d.Seen(StampOf(path)); got != Gone || !d.Modified() {
 		t.Errorf("a file that is gone is told as %v, modified %v", got, d.Modified())
 	}
+}
+
+// A solid that is written as a scan and opened comes back as a plan of the same
+// volume; STL keeps 24 bits of each coordinate.
+func TestAScanBecomesAPlan(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		p := newPlace(t)
+		want, err := p.subject(p.Doc.Plan())
+		if err != nil {
+			t.Fatal(err)
+		}
+		path := filepath.Join(t.TempDir(), "scan.stl")
+		file, err := os.Create(path)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if err := errors.Join(facets.WriteSTL(file, want.Stone), file.Close()); err != nil {
+			t.Fatal(err)
+		}
+		var told error
+		p.Open(path, func(err error) { told = err })
+		p.Look.Close()
+		p.window.settle()
+		if told != nil {
+			t.Fatal(told)
+		}
+		got, err := p.subject(p.Doc.Plan())
+		if err != nil {
+			t.Fatal(err)
+		}
+		const float32Rounding = 1e-5 // of a volume, from coordinates good to 6e-8 each
+		if d := got.Measures.VolumeMM3/want.Measures.VolumeMM3 - 1; math.Abs(d) > float32Rounding {
+			t.Errorf("the volume is off by %g", d)
+		}
+		if !p.Doc.Modified() || p.Doc.Path != "" || got.Material.Key != "corundum" {
+			t.Errorf("modified %v, path %q, material %s", p.Doc.Modified(), p.Doc.Path, got.Material.Key)
+		}
+		p.Look.Close()
+		p.window.settle()
+	})
 }

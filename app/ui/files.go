@@ -16,7 +16,7 @@ import (
 	"pavilight/testdata"
 )
 
-// open reads the plan at path; if it cannot be had the window keeps what it has.
+// open reads the plan or scan at path; if it cannot be had the window keeps what it has.
 func (w *window) open(path string) {
 	w.commitTyping()
 	w.bench.Open(path, func(err error) {
@@ -25,7 +25,9 @@ func (w *window) open(path string) {
 			w.tell("refused")
 			return
 		}
-		w.files.keepRecent(w.bench.Doc.Path)
+		if w.bench.Doc.Path != "" { // a scan has no plan file yet
+			w.files.keepRecent(w.bench.Doc.Path)
+		}
 		w.afterOpening()
 	})
 }
@@ -87,8 +89,8 @@ func (w *window) openDialog() {
 			r.Close()
 			w.open(path)
 		}, w.win)
-		d.SetFilter(storage.NewExtensionFileFilter([]string{".toml"}))
-		d.SetTitleText("Open a plan")
+		d.SetFilter(storage.NewExtensionFileFilter(append(model.ScanExtensions(), ".toml")))
+		d.SetTitleText("Open a plan or a scan")
 		w.showFileDialog(d)
 	})
 }

@@ -80,8 +80,8 @@ func (w *window) firstSteps() {
 		hint("Move a slider", "Every tier has its angle at the left. All six maps follow while the slider moves, then they refine. "+
 			"The ticks a, w and o on a pavilion tier are the critical angles in air, water and oil: below its tick a facet begins to leak."),
 		hint("Point at a map", "The numbers under the pointer appear in all six maps at once. Above, light that comes back; below, light that leaks. "+
-			"The first column is the stone in air, the others are the stone in water and in oil."),
-		hint("Open your own plan", "Drop a plan file on the window, or take one of the samples from the File menu. What you change can be undone, step by step."),
+			"Click to follow the ray there, facet by facet; a double click enlarges the map."),
+		hint("Open your own plan", "Drop a plan or a scan on the window, or take one of the samples from the File menu. What you change can be undone, step by step."),
 	)
-	w.raise(dialog.NewCustom("First steps", "Start", container.NewGridWrap(fyne.NewSize(520, 280), all), w.win))
+	w.raise(dialog.NewCustom("First steps", "Close", container.NewGridWrap(fyne.NewSize(520, 280), all), w.win))
 }

@@ -21,7 +21,7 @@ import (
 
 // Options say what the window opens with.
 type Options struct {
-	Path string // of a plan; empty for the bundled stone
+	Path string // of a plan or scan; empty for the bundled stone
 }
 
 const appID = "org.pavilight"
