@@ -182,3 +182,30 @@ func TestDefinitionsAreWhole(t *testing.T) {
 		seen[d.Name] = true
 	}
 }
+
+// TestMeasuresGiveProportionsBack measures stones made of measured proportions: what
+// went in must come out, for every outline whose table is measured across its width.
+func TestMeasuresGiveProportionsBack(t *testing.T) {
+	for _, outline := range Outlines() {
+		p, err := ParseProportions(outline, "")
+		if err != nil {
+			t.Fatal(err)
+		}
+		s, err := p.Stone(8)
+		if err != nil {
+			t.Fatal(err)
+		}
+		m := s.Measure()
+		const source = "the proportions that the stone was made of"
+		if math.Abs(m.WidthMM-8) > 1e-6 {
+			t.Errorf("%s: width %.6f mm, want 8 (%s)", outline, m.WidthMM, source)
+		}
+		want := p.value("table").Mean
+		if outline != "triangle" && math.Abs(m.TablePercent-want) > 1e-6 {
+			t.Errorf("%s: table %.6f %%, want %g (%s)", outline, m.TablePercent, want, source)
+		}
+		if r := p.value("ratio").Mean; r > 0 && math.Abs(m.Ratio-r) > 1e-6 {
+			t.Errorf("%s: length over width %.6f, want %g (%s)", outline, m.Ratio, r, source)
+		}
+	}
+}

@@ -133,11 +133,7 @@ func diameter(points []mgl64.Vec2) float64 {
 // convexHull returns the corners of the hull of points, anticlockwise, by
 // Andrew's monotone chain (Inform. Process. Lett. 9, 216, 1979).
 func convexHull(points []mgl64.Vec2) []mgl64.Vec2 {
-	p := slices.Clone(points)
-	slices.SortFunc(p, func(a, b mgl64.Vec2) int {
-		return cmp.Or(cmp.Compare(a[0], b[0]), cmp.Compare(a[1], b[1]))
-	})
-	p = slices.Compact(p)
+	p := apart(slices.Clone(points))
 	if len(p) < 3 {
 		return p
 	}
@@ -166,4 +162,29 @@ func convexHull(points []mgl64.Vec2) []mgl64.Vec2 {
 		half(keep, p[i])
 	}
 	return hull[:len(hull)-1]
+}
+
+// apart leaves out points that lie within rounding of another, as the upper and
+// lower ends of upright edges do when they are seen from above.
+func apart(points []mgl64.Vec2) []mgl64.Vec2 {
+	reach := 0.0
+	for _, p := range points {
+		reach = max(reach, p.Len())
+	}
+	near := weldTolerance * reach
+	slices.SortFunc(points, func(a, b mgl64.Vec2) int {
+		return cmp.Or(cmp.Compare(a[0], b[0]),
+			cmp.Compare(a[1], b[1]))
+	})
+	var kept []mgl64.Vec2
+	for _, p := range points {
+		twin := false
+		for k := len(kept) - 1; k >= 0 && p[0]-kept[k][0] <= near && !twin; k-- {
+			twin = math.Abs(p[1]-kept[k][1]) <= near
+		}
+		if !twin {
+			kept = append(kept, p)
+		}
+	}
+	return kept
 }

@@ -1,7 +1,6 @@
 package facets
 
 import (
-	"cmp"
 	"math"
 	"slices"
 
@@ -208,32 +207,7 @@ func seenFromAbove(s *Stone, turn mgl64.Mat3) outline {
 	for i, c := range s.Corners {
 		points[i] = turn.Mul3x1(c).Vec2()
 	}
-	return outlineOf(apart(points))
-}
-
-// apart leaves out points that lie within rounding of another, as the upper and
-// lower ends of upright edges do when they are seen from above.
-func apart(points []mgl64.Vec2) []mgl64.Vec2 {
-	reach := 0.0
-	for _, p := range points {
-		reach = max(reach, p.Len())
-	}
-	near := weldTolerance * reach
-	slices.SortFunc(points, func(a, b mgl64.Vec2) int {
-		return cmp.Or(cmp.Compare(a[0], b[0]),
-			cmp.Compare(a[1], b[1]))
-	})
-	var kept []mgl64.Vec2
-	for _, p := range points {
-		twin := false
-		for k := len(kept) - 1; k >= 0 && p[0]-kept[k][0] <= near && !twin; k-- {
-			twin = math.Abs(p[1]-kept[k][1]) <= near
-		}
-		if !twin {
-			kept = append(kept, p)
-		}
-	}
-	return kept
+	return outlineOf(points)
 }
 
 // outlineCentre returns the centre of the outline's area.
