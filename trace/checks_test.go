@@ -8,6 +8,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"regexp"
 	"runtime"
 	"slices"
 	"strings"
@@ -34,6 +35,9 @@ type recorder struct {
 // rowKey names a row of the page: comparisons alike in all three share it.
 type rowKey struct{ test, what, source string }
 
+// atWavelength ends the words of a comparison that is made at many wavelengths.
+var atWavelength = regexp.MustCompile(` (at|of)? ?[0-9.]+ nm$`)
+
 // row is what the comparisons of one key came to.
 type row struct {
 	file      string // in which the test stands
@@ -51,6 +55,7 @@ func (r *recorder) note(t *testing.T, what string, got, want, allowed float64, w
 	if i := strings.LastIndex(what, ": "); i >= 0 {
 		what = what[i+2:] // what stands before names the stone or the row
 	}
+	what = atWavelength.ReplaceAllString(what, "")
 	test, _, _ := strings.Cut(t.Name(), "/")
 	key := rowKey{test, what, source}
 	r.mutex.Lock()
