@@ -1,0 +1,261 @@
+package trace
+
+import (
+	"math"
+	"math/rand/v2"
+	"runtime"
+	"sync"
+	"testing"
+)
+
+// forward follows light the way it runs, from a uniform dome above to the eye: a tracer
+// for tests only, that shares nothing with the others. Positions are those of a body.
+// Polarisation is averaged at every facet.
+type forward struct {
+	planes  []forwardPlane
+	n, m    float64
+	dish    bool    // m is a liquid with a flat surface across z
+	level   float64 // of the surface
+	cosCone float64 // light that leaves everything closer to z than this is seen
+	rng     *rand.Rand
+}
+
+// fresnel is the reflectance of unpolarised light from n1 to n2, and the cosine beyond:
+// Born & Wolf 1.5.2 (21).
+func fresnel(n1, n2, cosI float64) (r, cosT float64) {
+	sinT2 := (n1 / n2) * (n1 / n2) * (1 - cosI*cosI)
+	if sinT2 >= 1 {
+		return 1, 0
+	}
+	cosT = math.Sqrt(1 - sinT2)
+	s := (n1*cosI - n2*cosT) / (n1*cosI + n2*cosT)
+	p := (n2*cosI - n1*cosT) / (n2*cosI + n1*cosT)
+	return (s*s + p*p) / 2, cosT
+}
+
+// faint light goes all one way or all the other.
+const faintForward = 0.1
+
+// seen returns how much of one unit of light that travels from x along d is seen. first
+// tells that it has not met the stone yet: what the stone's surface mirrors then does
+// not count unless the stone lies in a dish.
+func (f *forward) seen(x, d vec, power float64, first bool) (sum float64) {
+	facet, far := -1, math.Inf(1)
+	near := 1e-9
+	for i := range f.planes {
+		p := &f.planes[i]
+		slope, gap := p.normal.dot(d), p.distance-p.normal.dot(x)
+		switch {
+		case slope < 0:
+			if s := gap / slope; s > near {
+				facet, near = i, s
+			}
+		case slope > 0:
+			far = min(far, gap/slope)
+		}
+	}
+	if facet < 0 || near >= far {
+		return f.leaves(x, d, power)
+	}
+	x = x.plus(near, d)
+	normal := f.planes[facet].normal
+	cosI := -d.dot(normal)
+	r, cosT := fresnel(f.m, f.n, cosI)
+	if !first || f.dish {
+		sum += f.leaves(x, d.plus(2*cosI, normal), power*r)
+	}
+	if power *= 1 - r; power == 0 {
+		return sum
+	}
+	d = d.scale(f.m/f.n).plus(f.m/f.n*cosI-cosT, normal)
+	for range 10000 {
+		exit, s := -1, math.Inf(1)
+		for i := range f.planes {
+			p := &f.planes[i]
+			if slope := p.normal.dot(d); slope > 0 && i != facet {
+				if t := (p.distance - p.normal.dot(x)) / slope; t < s {
+					exit, s = i, t
+				}
+			}
+		}
+		facet = exit
+		x = x.plus(s, d)
+		normal := f.planes[exit].normal
+		cosI := d.dot(normal)
+		r, cosT := fresnel(f.n, f.m, cosI)
+		out := power * (1 - r)
+		power *= r
+		if all := out + power; all < faintForward && out > 0 {
+			if f.rng.Float64()*all < out {
+				out, power = all, 0
+			} else {
+				out, power = 0, all
+			}
+		}
+		if out > 0 {
+			sum += f.leaves(x, d.scale(f.n/f.m).plus(cosT-f.n/f.m*cosI, normal), out)
+		}
+		if power == 0 {
+			break
+		}
+		d = d.plus(-2*cosI, normal)
+	}
+	return sum
+}
+
+// leaves follows light that runs outside the stone.
+func (f *forward) leaves(x, d vec, power float64) float64 {
+	if d.z <= 0 || power == 0 {
+		return 0 // leaked
+	}
+	if !f.dish {
+		if d.z > f.cosCone {
+			return power
+		}
+		return 0
+	}
+	r, cosT := fresnel(f.m, 1, d.z)
+	sum := 0.0
+	if cosT > f.cosCone {
+		sum = power * (1 - r)
+	}
+	back := power * r
+	if back < faintForward {
+		if f.rng.Float64()*faintForward >= back {
+			return sum
+		}
+		back = faintForward
+	}
+	x = x.plus((f.level-x.z)/d.z, d)
+	return sum + f.seen(x, vec{d.x, d.y, -d.z}, back, false)
+}
+
+type forwardPlane struct {
+	normal   vec
+	distance float64
+}
+
+// direction draws one from the cone about -z whose cosine is at least cos, evenly by
+// solid angle, and a point on a disc of radius 1 across it, two units before the middle.
+func direction(rng *rand.Rand, cos float64) (x, d vec) {
+	c := 1 - rng.Float64()*(1-cos)
+	s := math.Sqrt(1 - c*c)
+	sin, co := math.Sincos(2 * math.Pi * rng.Float64())
+	d = vec{s * co, s * sin, -c}
+	l := fresh(d)
+	sin, co = math.Sincos(2 * math.Pi * rng.Float64())
+	r := math.Sqrt(rng.Float64())
+	return l.a.scale(r*co).plus(r*sin, l.b).plus(-2, d), d
+}
+
+// overStreams is the mean of what sample returns, and its standard error, over independent
+// streams, one a worker at a time.
+func overStreams(samples int, sample func(rng *rand.Rand) float64) (mean, standardError float64) {
+	const streams = 64
+	means := make([]float64, streams)
+	var workers sync.WaitGroup
+	turn := make(chan int)
+	for range runtime.GOMAXPROCS(0) {
+		workers.Go(func() {
+			for i := range turn {
+				rng := rand.New(rand.NewPCG(77, uint64(i)))
+				for range samples / streams {
+					means[i] += sample(rng) / float64(samples/streams)
+				}
+			}
+		})
+	}
+	for i := range streams {
+		turn <- i
+	}
+	close(turn)
+	workers.Wait()
+	for _, m := range means {
+		mean += m / streams
+	}
+	for _, m := range means {
+		standardError += (m - mean) * (m - mean) / (streams * (streams - 1))
+	}
+	return mean, math.Sqrt(standardError)
+}
+
+// TestReciprocity lights a stone by a uniform dome and gathers, tracing forward, what
+// comes out into a cone of 2 degrees about the eye. The tracer says the same from the eye
+// back: the mean of returned over the cone, radiance counted over n squared.
+//
+// Both count per unit of the cone's solid angle and of the disc's area that holds the
+// stone. A dome of radiance 1 in air has the radiance n² times what the surface lets
+// through in a liquid; forgetting n² must be seen.
+func TestReciprocity(t *testing.T) {
+	const source = "reciprocity of light, L/n² being kept; a tracer for tests only that runs forward"
+	// Samples for an error of some 7 % or, in the long form, which takes minutes, 0.5 %.
+	samples, words := 1<<19, ""
+	if *long {
+		samples, words = 1<<27, " "+longForm
+	}
+	cosCone := math.Cos(2 * math.Pi / 180)
+	s := lopsided(t)
+	for _, row := range []struct {
+		name        string
+		n, m, light float64 // light: cosine of the cone in the medium from which it comes
+		dish        bool
+		more        int // times as many samples
+	}{
+		{"in air", 1.77, 1, 0, false, 1},
+		{"in a dish of index 1.477", 2.417, 1.477, math.Sqrt(1 - 1/(1.477*1.477)), true, 2},
+	} {
+		samples := samples * row.more
+		medium := plain(t, "medium", row.m)
+		tr := general(t, s, View{}, medium, true)
+		tr.faint = 1e-2
+		var planes []forwardPlane
+		for i, f := range s.Facets {
+			planes = append(planes, forwardPlane{fromMgl(f.Normal), 1 / tr.body.rows[i].length()})
+		}
+		const level = 1.5
+		if row.dish {
+			tr.dish = &dish{medium, level}
+		}
+
+		// Backward.
+		at := at550(tr, plain(t, "stone", row.n))
+		back, backError := overStreams(samples/8, func(rng *rand.Rand) float64 {
+			x, d := direction(rng, cosCone)
+			through, share := d, 1.0
+			if row.dish { // bent down at the surface, where areas across it grow
+				_, cosT := fresnel(1, row.m, -d.z)
+				through = vec{d.x / row.m, d.y / row.m, -cosT}
+				share = -d.z / cosT
+			}
+			facet, far, ok := tr.body.entry(x, through)
+			if !ok {
+				return 0
+			}
+			var none sums
+			return share * tr.send(facet, x.plus(far, through), d, at, dice(rng.Uint32()), &none).Returned
+		})
+
+		// Forward.
+		seen, seenError := overStreams(samples, func(rng *rand.Rand) float64 {
+			f := forward{planes: planes, n: row.n, m: row.m, dish: row.dish, level: level, cosCone: cosCone, rng: rng}
+			x, d := direction(rng, row.light)
+			radiance := 1.0
+			if row.dish {
+				r, _ := fresnel(row.m, 1, -d.z)
+				radiance = row.m * row.m * (1 - r)
+			}
+			return radiance * f.seen(x, d, 1, true)
+		})
+		k := (1 - row.light) / (1 - cosCone) // solid angles
+		agree(t, row.name+": light into 2° about the eye"+words, seen*k, seenError*k, back, backError, 4, source)
+		if *long && math.Hypot(seenError*k, backError) > 0.005*back {
+			t.Errorf("%s: the joint error is %.2g of %.4g: not 0.5 %% or better", row.name, math.Hypot(seenError*k, backError), back)
+		}
+		if row.dish {
+			wrong := 1 / (row.m * row.m)
+			if math.Abs(seen*k*wrong-back) <= 4*math.Hypot(seenError*k*wrong, backError) {
+				t.Errorf("without n² forward gives %.5f, backward %.5f: this check cannot fail", seen*k*wrong, back)
+			}
+		}
+	}
+}
