@@ -17,8 +17,8 @@ import (
 )
 
 var (
-	update = flag.Bool("update", false, "write CHECKS.md anew from the checks of this run")
-	long   = flag.Bool("long", false, "run the long forms of the statistical checks")
+	update = flag.Bool("update", false, "write CHECKS.md anew from the checks of this run; with -long only its long forms")
+	long   = flag.Bool("long", false, "run the long forms of the statistical checks, which take minutes")
 )
 
 // checksPage is the page that lists every check against a value from outside this code.
@@ -107,6 +107,20 @@ func agree(t *testing.T, what string, got, gotError, want, wantError, errors flo
 	}
 }
 
+// estimate is a mean with its standard error.
+type estimate struct{ mean, error float64 }
+
+// above fails the test where more is not greater than less by some standard errors.
+func above(t *testing.T, what string, more, less estimate, errors float64, source string) {
+	t.Helper()
+	joint := math.Hypot(more.error, less.error)
+	checks.note(t, what, more.mean, less.mean, math.Inf(1), fmt.Sprintf("more by %g standard errors", errors), source, true)
+	if !(more.mean-less.mean > errors*joint) {
+		t.Errorf("%s: %.5g ± %.1g is not more than %.5g ± %.1g, %.1f standard errors apart (%s)",
+			what, more.mean, more.error, less.mean, less.error, (more.mean-less.mean)/joint, source)
+	}
+}
+
 // themes are the page's headings in their order, by the file that holds the checks.
 var themes = []struct{ file, title string }{
 	{"fresnel_test.go", "A facet: reflection, refraction, critical angle, phase"},
@@ -120,7 +134,8 @@ var themes = []struct{ file, title string }{
 	{"travel_crystal_test.go", "Double refraction in a stone"},
 	{"reciprocity_test.go", "Light traced forward"},
 	{"peer_test.go", "A general path tracer"},
-	{"harding_test.go", "Published theory and studies of cut stones"},
+	{"harding_test.go", "Plane theory of cut stones"},
+	{"study_test.go", "A published study of cut stones, by its trends"},
 	{"observer_test.go", "The observer"},
 	{"illuminant_test.go", "Illuminants"},
 	{"light_test.go", "Lights"},
@@ -139,7 +154,7 @@ func TestMain(m *testing.M) {
 	for _, name := range []string{"run", "skip", "list", "bench", "fuzz"} {
 		whole = whole && flag.Lookup("test."+name).Value.String() == ""
 	}
-	if code == 0 && whole && flag.Lookup("test.count").Value.String() == "1" {
+	if code == 0 && (whole && flag.Lookup("test.count").Value.String() == "1" || *update && *long) {
 		if err := checks.settle(); err != nil {
 			fmt.Fprintln(os.Stderr, err)
 			code = 1
@@ -156,8 +171,10 @@ func (r *recorder) settle() error {
 	}
 	rows := r.lines()
 	if *update {
-		if !*long {
-			rows = append(rows, longRows(string(old))...)
+		if *long {
+			rows = append(rowsOf(string(old), false), merged(rowsOf(string(old), true), rows)...)
+		} else {
+			rows = append(rows, rowsOf(string(old), true)...)
 		}
 		return os.WriteFile(checksPage, []byte(r.page(rows, section(string(old), mutationsHeading))), 0o644)
 	}
@@ -182,18 +199,30 @@ func (r *recorder) settle() error {
 	return nil
 }
 
-// longRows returns the rows of long forms that the page has.
-func longRows(page string) (rows []line) {
+// rowsOf returns the rows that a page has, of long forms or of others.
+func rowsOf(page string, longForms bool) (rows []line) {
 	file := ""
 	for _, text := range strings.Split(page, "\n") {
 		if name := strings.Trim(text, "`"); strings.HasSuffix(name, "_test.go") {
 			file = name
 		}
-		if strings.HasPrefix(text, "| `") && strings.Contains(text, longForm) {
+		if strings.HasPrefix(text, "| `") && strings.Contains(text, longForm) == longForms {
 			rows = append(rows, line{file, text})
 		}
 	}
 	return rows
+}
+
+// merged returns a page's long forms with those of this run in place of their like.
+func merged(old, fresh []line) []line {
+	check := func(l line) string { return strings.Join(strings.Split(l.text, "|")[:3], "|") }
+	fresh = slices.DeleteFunc(fresh, func(l line) bool { return !strings.Contains(l.text, longForm) })
+	for _, l := range old {
+		if !slices.ContainsFunc(fresh, func(f line) bool { return check(f) == check(l) }) {
+			fresh = append(fresh, l)
+		}
+	}
+	return fresh
 }
 
 // line is a row as the page shows it.

@@ -12,12 +12,13 @@ import (
 // for tests only, that shares nothing with the others. Positions are those of a body.
 // Polarisation is averaged at every facet.
 type forward struct {
-	planes  []forwardPlane
-	n, m    float64
-	dish    bool    // m is a liquid with a flat surface across z
-	level   float64 // of the surface
-	cosCone float64 // light that leaves everything closer to z than this is seen
-	rng     *rand.Rand
+	planes []forwardPlane
+	n, m   float64
+	dish   bool    // m is a liquid with a flat surface across z
+	level  float64 // of the surface
+	rng    *rand.Rand
+
+	seen func(cos, power float64) // is told of light that leaves everything upward, with its cosine to z
 }
 
 // fresnel is the reflectance of unpolarised light from n1 to n2, and the cosine beyond:
@@ -36,10 +37,10 @@ func fresnel(n1, n2, cosI float64) (r, cosT float64) {
 // faint light goes all one way or all the other.
 const faintForward = 0.1
 
-// seen returns how much of one unit of light that travels from x along d is seen. first
-// tells that it has not met the stone yet: what the stone's surface mirrors then does
-// not count unless the stone lies in a dish.
-func (f *forward) seen(x, d vec, power float64, first bool) (sum float64) {
+// follow follows light that travels outside the stone from x along d. first tells that it
+// has not met the stone yet: what the stone's surface mirrors then is not seen unless
+// the stone lies in a dish.
+func (f *forward) follow(x, d vec, power float64, first bool) {
 	facet, far := -1, math.Inf(1)
 	near := 1e-9
 	for i := range f.planes {
@@ -55,17 +56,18 @@ func (f *forward) seen(x, d vec, power float64, first bool) (sum float64) {
 		}
 	}
 	if facet < 0 || near >= far {
-		return f.leaves(x, d, power)
+		f.leaves(x, d, power)
+		return
 	}
 	x = x.plus(near, d)
 	normal := f.planes[facet].normal
 	cosI := -d.dot(normal)
 	r, cosT := fresnel(f.m, f.n, cosI)
 	if !first || f.dish {
-		sum += f.leaves(x, d.plus(2*cosI, normal), power*r)
+		f.leaves(x, d.plus(2*cosI, normal), power*r)
 	}
 	if power *= 1 - r; power == 0 {
-		return sum
+		return
 	}
 	d = d.scale(f.m/f.n).plus(f.m/f.n*cosI-cosT, normal)
 	for range 10000 {
@@ -93,41 +95,37 @@ func (f *forward) seen(x, d vec, power float64, first bool) (sum float64) {
 			}
 		}
 		if out > 0 {
-			sum += f.leaves(x, d.scale(f.n/f.m).plus(cosT-f.n/f.m*cosI, normal), out)
+			f.leaves(x, d.scale(f.n/f.m).plus(cosT-f.n/f.m*cosI, normal), out)
 		}
 		if power == 0 {
-			break
+			return
 		}
 		d = d.plus(-2*cosI, normal)
 	}
-	return sum
 }
 
-// leaves follows light that runs outside the stone.
-func (f *forward) leaves(x, d vec, power float64) float64 {
+// leaves lets light that runs outside the stone leave everything, or come down again.
+func (f *forward) leaves(x, d vec, power float64) {
 	if d.z <= 0 || power == 0 {
-		return 0 // leaked
+		return // leaked
 	}
 	if !f.dish {
-		if d.z > f.cosCone {
-			return power
-		}
-		return 0
+		f.seen(d.z, power)
+		return
 	}
 	r, cosT := fresnel(f.m, 1, d.z)
-	sum := 0.0
-	if cosT > f.cosCone {
-		sum = power * (1 - r)
+	if r < 1 {
+		f.seen(cosT, power*(1-r))
 	}
 	back := power * r
 	if back < faintForward {
 		if f.rng.Float64()*faintForward >= back {
-			return sum
+			return
 		}
 		back = faintForward
 	}
 	x = x.plus((f.level-x.z)/d.z, d)
-	return sum + f.seen(x, vec{d.x, d.y, -d.z}, back, false)
+	f.follow(x, vec{d.x, d.y, -d.z}, back, false)
 }
 
 type forwardPlane struct {
@@ -148,20 +146,22 @@ func direction(rng *rand.Rand, cos float64) (x, d vec) {
 	return l.a.scale(r*co).plus(r*sin, l.b).plus(-2, d), d
 }
 
-// overStreams is the mean of what sample returns, and its standard error, over independent
-// streams, one a worker at a time.
-func overStreams(samples int, sample func(rng *rand.Rand) float64) (mean, standardError float64) {
+// overStreams returns the means of some numbers that sample adds up, over independent
+// streams of random numbers, and their errors from the spread of the streams.
+func overStreams(numbers, samples int, sample func(rng *rand.Rand, add []float64)) []estimate {
 	const streams = 64
-	means := make([]float64, streams)
+	totals := make([][]float64, streams)
 	var workers sync.WaitGroup
 	turn := make(chan int)
 	for range runtime.GOMAXPROCS(0) {
 		workers.Go(func() {
 			for i := range turn {
 				rng := rand.New(rand.NewPCG(77, uint64(i)))
+				add := make([]float64, numbers)
 				for range samples / streams {
-					means[i] += sample(rng) / float64(samples/streams)
+					sample(rng, add)
 				}
+				totals[i] = add
 			}
 		})
 	}
@@ -170,13 +170,28 @@ func overStreams(samples int, sample func(rng *rand.Rand) float64) (mean, standa
 	}
 	close(turn)
 	workers.Wait()
-	for _, m := range means {
-		mean += m / streams
+	all := make([]estimate, numbers)
+	for k := range all {
+		each := float64(samples / streams)
+		for _, total := range totals {
+			all[k].mean += total[k] / each / streams
+		}
+		spread := 0.0
+		for _, total := range totals {
+			d := total[k]/each - all[k].mean
+			spread += d * d
+		}
+		all[k].error = math.Sqrt(spread / (streams * (streams - 1)))
 	}
-	for _, m := range means {
-		standardError += (m - mean) * (m - mean) / (streams * (streams - 1))
+	return all
+}
+
+// forwardPlanes are a body's facets.
+func forwardPlanes(b *body) (planes []forwardPlane) {
+	for j, n := range b.normal {
+		planes = append(planes, forwardPlane{n, 1 / b.rows[j].length()})
 	}
-	return mean, math.Sqrt(standardError)
+	return planes
 }
 
 // TestReciprocity lights a stone by a uniform dome and gathers, tracing forward, what
@@ -208,10 +223,6 @@ func TestReciprocity(t *testing.T) {
 		medium := plain(t, "medium", row.m)
 		tr := general(t, s, View{}, medium, true)
 		tr.faint = 1e-2
-		var planes []forwardPlane
-		for i, f := range s.Facets {
-			planes = append(planes, forwardPlane{fromMgl(f.Normal), 1 / tr.body.rows[i].length()})
-		}
 		const level = 1.5
 		if row.dish {
 			tr.dish = &dish{medium, level}
@@ -219,7 +230,7 @@ func TestReciprocity(t *testing.T) {
 
 		// Backward.
 		at := at550(tr, plain(t, "stone", row.n))
-		back, backError := overStreams(samples/8, func(rng *rand.Rand) float64 {
+		back := overStreams(1, samples/8, func(rng *rand.Rand, add []float64) {
 			x, d := direction(rng, cosCone)
 			through, share := d, 1.0
 			if row.dish { // bent down at the surface, where areas across it grow
@@ -227,34 +238,39 @@ func TestReciprocity(t *testing.T) {
 				through = vec{d.x / row.m, d.y / row.m, -cosT}
 				share = -d.z / cosT
 			}
-			facet, far, ok := tr.body.entry(x, through)
-			if !ok {
-				return 0
+			if facet, far, ok := tr.body.entry(x, through); ok {
+				var none sums
+				add[0] += share * tr.send(facet, x.plus(far, through), d, at, dice(rng.Uint32()), &none).Returned
 			}
-			var none sums
-			return share * tr.send(facet, x.plus(far, through), d, at, dice(rng.Uint32()), &none).Returned
-		})
+		})[0]
 
 		// Forward.
-		seen, seenError := overStreams(samples, func(rng *rand.Rand) float64 {
-			f := forward{planes: planes, n: row.n, m: row.m, dish: row.dish, level: level, cosCone: cosCone, rng: rng}
+		planes := forwardPlanes(tr.body)
+		seen := overStreams(1, samples, func(rng *rand.Rand, add []float64) {
 			x, d := direction(rng, row.light)
 			radiance := 1.0
 			if row.dish {
 				r, _ := fresnel(row.m, 1, -d.z)
 				radiance = row.m * row.m * (1 - r)
 			}
-			return radiance * f.seen(x, d, 1, true)
-		})
+			f := forward{planes: planes, n: row.n, m: row.m, dish: row.dish, level: level, rng: rng}
+			f.seen = func(cos, power float64) {
+				if cos > cosCone {
+					add[0] += radiance * power
+				}
+			}
+			f.follow(x, d, 1, true)
+		})[0]
 		k := (1 - row.light) / (1 - cosCone) // solid angles
-		agree(t, row.name+": light into 2° about the eye"+words, seen*k, seenError*k, back, backError, 4, source)
-		if *long && math.Hypot(seenError*k, backError) > 0.005*back {
-			t.Errorf("%s: the joint error is %.2g of %.4g: not 0.5 %% or better", row.name, math.Hypot(seenError*k, backError), back)
+		seen.mean, seen.error = seen.mean*k, seen.error*k
+		agree(t, row.name+", light into 2° about the eye"+words, seen.mean, seen.error, back.mean, back.error, 4, source)
+		if joint := math.Hypot(seen.error, back.error); *long && joint > 0.005*back.mean {
+			t.Errorf("%s: the joint error is %.2g of %.4g: not 0.5 %% or better", row.name, joint, back.mean)
 		}
 		if row.dish {
 			wrong := 1 / (row.m * row.m)
-			if math.Abs(seen*k*wrong-back) <= 4*math.Hypot(seenError*k*wrong, backError) {
-				t.Errorf("without n² forward gives %.5f, backward %.5f: this check cannot fail", seen*k*wrong, back)
+			if math.Abs(seen.mean*wrong-back.mean) <= 4*math.Hypot(seen.error*wrong, back.error) {
+				t.Errorf("without n² forward gives %.5f, backward %.5f: this check cannot fail", seen.mean*wrong, back.mean)
 			}
 		}
 	}
