@@ -101,9 +101,9 @@ func inWords(ctx context.Context, err error) (status int, words string) {
 	return status, strings.TrimRight(b.String(), "\n")
 }
 
-// disk returns the fault of a file that cannot be written, without the name of the
-// system call and of temporary files.
-func disk(path string, err error) error {
+// unwritable returns the fault of a folder that cannot be written to, without the name
+// of the system call and of temporary files.
+func unwritable(path string, err error) error {
 	var p *fs.PathError
 	if errors.As(err, &p) {
 		err = p.Err

@@ -15,6 +15,7 @@ import (
 	"strings"
 	"time"
 
+	"pavilight/app/disk"
 	"pavilight/app/drawing"
 	"pavilight/app/sheet"
 	"pavilight/facets"
@@ -130,8 +131,8 @@ func (k *cutCommand) Run(c call) error {
 	for _, f := range files {
 		path := filepath.Join(folder, f.name)
 		whole := func(w io.Writer) error { _, err := w.Write(f.content); return err }
-		if err := drawing.WriteFile(path, whole); err != nil {
-			return disk(path, err)
+		if err := disk.Replace(path, whole); err != nil {
+			return ownFault(err)
 		}
 		result.Files = append(result.Files, path)
 	}

@@ -4,9 +4,11 @@ import (
 	"context"
 	"fmt"
 	"image"
+	"io"
 	"os"
 	"path/filepath"
 
+	"pavilight/app/disk"
 	"pavilight/app/picture"
 	"pavilight/trace"
 )
@@ -21,11 +23,11 @@ type outFolder struct {
 // written into it.
 func openOut(path string) (*outFolder, error) {
 	if err := os.MkdirAll(path, 0o755); err != nil {
-		return nil, disk(path, err)
+		return nil, unwritable(path, err)
 	}
 	probe, err := os.CreateTemp(path, ".pavilight.*")
 	if err != nil {
-		return nil, disk(path, err)
+		return nil, unwritable(path, err)
 	}
 	probe.Close()
 	os.Remove(probe.Name())
@@ -145,8 +147,8 @@ func (f *outFolder) png(ctx context.Context, name string, img image.Image) error
 		return err
 	}
 	path := filepath.Join(f.path, name)
-	if err := picture.WritePNG(path, img); err != nil {
-		return disk(path, err)
+	if err := disk.Replace(path, func(w io.Writer) error { return picture.EncodePNG(w, img) }); err != nil {
+		return ownFault(err)
 	}
 	f.written = append(f.written, name)
 	return nil

@@ -5,6 +5,7 @@ import (
 	"path/filepath"
 	"time"
 
+	"pavilight/app/disk"
 	"pavilight/facets"
 )
 
@@ -100,7 +101,7 @@ func (d *Document) FileName() string {
 
 // save writes the plan to path as a whole or not at all and goes on under that name.
 func (d *Document) save(path string) error {
-	if err := writeWhole(path, d.Plan().Write); err != nil {
+	if err := disk.Replace(path, d.Plan().Write); err != nil {
 		return err
 	}
 	d.Path, d.stamp = path, StampOf(path)

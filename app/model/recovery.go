@@ -15,6 +15,7 @@ import (
 	"syscall"
 	"time"
 
+	"pavilight/app/disk"
 	"pavilight/facets"
 )
 
@@ -57,9 +58,9 @@ func (r *Recovery) Keep(plan *facets.Plan, path string) error {
 		return err
 	}
 	if err := os.MkdirAll(r.folder, 0o700); err != nil {
-		return inWords(r.own, err)
+		return disk.InWords(r.own, err)
 	}
-	return writeWhole(r.own, func(w io.Writer) error { _, err := w.Write(content); return err })
+	return disk.Replace(r.own, func(w io.Writer) error { _, err := w.Write(content); return err })
 }
 
 // Drop forgets what this program kept: the work is saved, or is not wanted.

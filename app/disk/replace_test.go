@@ -1,4 +1,4 @@
-package model
+package disk
 
 import (
 	"errors"
@@ -15,10 +15,10 @@ func text(s string) func(io.Writer) error {
 	return func(w io.Writer) error { _, err := io.WriteString(w, s); return err }
 }
 
-func TestWriteWhole(t *testing.T) {
+func TestReplace(t *testing.T) {
 	path := filepath.Join(t.TempDir(), "stone.toml")
 	for _, want := range []string{"first", "second, longer", "3"} {
-		if err := writeWhole(path, text(want)); err != nil {
+		if err := Replace(path, text(want)); err != nil {
 			t.Fatal(err)
 		}
 		if got, _ := os.ReadFile(path); string(got) != want {
@@ -30,16 +30,16 @@ func TestWriteWhole(t *testing.T) {
 	}
 }
 
-func TestWriteWholeKeepsTheOldFileWhenWritingFails(t *testing.T) {
+func TestReplaceKeepsTheOldFileWhenWritingFails(t *testing.T) {
 	path := filepath.Join(t.TempDir(), "stone.toml")
-	if err := writeWhole(path, text("kept")); err != nil {
+	if err := Replace(path, text("kept")); err != nil {
 		t.Fatal(err)
 	}
 	full := func(w io.Writer) error {
 		io.WriteString(w, "half a pl")
 		return &os.PathError{Op: "write", Path: path, Err: syscall.ENOSPC}
 	}
-	err := writeWhole(path, full)
+	err := Replace(path, full)
 	if err == nil || !strings.Contains(err.Error(), "full") {
 		t.Errorf("error %v, want one that says the disk is full", err)
 	}
@@ -51,13 +51,13 @@ func TestWriteWholeKeepsTheOldFileWhenWritingFails(t *testing.T) {
 	}
 }
 
-func TestWriteWholeThroughALink(t *testing.T) {
+func TestReplaceThroughALink(t *testing.T) {
 	folder := t.TempDir()
 	target, link := filepath.Join(folder, "real.toml"), filepath.Join(folder, "link.toml")
 	if err := errors.Join(os.WriteFile(target, []byte("old"), 0o600), os.Symlink(target, link)); err != nil {
 		t.Skip("no links here: ", err)
 	}
-	if err := writeWhole(link, text("new")); err != nil {
+	if err := Replace(link, text("new")); err != nil {
 		t.Fatal(err)
 	}
 	info, err := os.Lstat(link)
@@ -72,7 +72,7 @@ func TestWriteWholeThroughALink(t *testing.T) {
 	}
 }
 
-func TestWriteWholeRefusalsHaveARemedy(t *testing.T) {
+func TestReplaceRefusalsHaveARemedy(t *testing.T) {
 	folder := t.TempDir()
 	protected := filepath.Join(folder, "protected.toml")
 	if err := os.WriteFile(protected, []byte("x"), 0o444); err != nil {
@@ -83,12 +83,12 @@ func TestWriteWholeRefusalsHaveARemedy(t *testing.T) {
 		"a folder that is absent": filepath.Join(folder, "absent", "x.toml"),
 		"a protected file":        protected,
 	} {
-		err := writeWhole(path, text("y"))
+		err := Replace(path, text("y"))
 		if err == nil || !strings.ContainsAny(err.Error(), ";") {
 			t.Errorf("%s: error %v, want one with a remedy after a semicolon", name, err)
 		}
 	}
-	if err := inWords("/a/b", fmt.Errorf("wrapped: %w", os.ErrPermission)); !strings.Contains(err.Error(), "another folder") {
+	if err := InWords("/a/b", fmt.Errorf("wrapped: %w", os.ErrPermission)); !strings.Contains(err.Error(), "another folder") {
 		t.Errorf("no remedy in %q", err)
 	}
 }

@@ -1,4 +1,5 @@
-package model
+// Package disk writes files so that none is ever half-written.
+package disk
 
 import (
 	"errors"
@@ -11,10 +12,10 @@ import (
 	"syscall"
 )
 
-// writeWhole replaces the file at path as a whole or leaves it as it was: the
+// Replace replaces the file at path as a whole or leaves it as it was: the
 // text goes to a new file beside it, which takes the name only once it is safely
 // on the disk. A link stays a link. Errors are in words with a remedy.
-func writeWhole(path string, write func(io.Writer) error) (err error) {
+func Replace(path string, write func(io.Writer) error) (err error) {
 	target := path
 	if resolved, err := filepath.EvalSymlinks(path); err == nil {
 		target = resolved
@@ -31,13 +32,13 @@ func writeWhole(path string, write func(io.Writer) error) (err error) {
 	}
 	temporary, err := os.CreateTemp(filepath.Dir(target), "."+filepath.Base(target)+".*.new")
 	if err != nil {
-		return inWords(path, err)
+		return InWords(path, err)
 	}
 	defer func() {
 		if err != nil {
 			temporary.Close()
 			os.Remove(temporary.Name())
-			err = inWords(path, err)
+			err = InWords(path, err)
 		}
 	}()
 	if err := write(temporary); err != nil {
@@ -62,8 +63,8 @@ func writeWhole(path string, write func(io.Writer) error) (err error) {
 	return nil
 }
 
-// inWords says why a file could not be written and what to do.
-func inWords(path string, err error) error {
+// InWords says why a file could not be written and what to do.
+func InWords(path string, err error) error {
 	folder := filepath.Dir(path)
 	switch {
 	case errors.Is(err, fs.ErrPermission), errors.Is(err, syscall.EROFS):
