@@ -56,10 +56,10 @@ func BenchmarkGrid(b *testing.B) {
 						// The stone is 2 wide; its middle lies 0.00 beside that of the outline's square.
 						u, v := -1+2*(float64(i%grid)+0.5137)/grid, -1+2*(float64(i/grid)+0.5291)/grid
 						if facet, x, ok := tr.outline.enter(u*tr.outline.half, v*tr.outline.half); ok {
-							rays = append(rays, ray{facet: int32(facet), at: x, n: 2.417, m: 1, die: dice(i)})
+							rays = append(rays, ray{facet: int32(facet), at: x, along: vec{0, 0, -1}, n: 2.417, m: 1, weight: 1, die: dice(i)})
 						}
 					}
-					tr.followAll(rays, out[:len(rays)], columns)
+					tr.followAll(rays, out[:len(rays)], nil, columns)
 				}
 				n, l := float64(len(rays)), columns[0].ledger()
 				b.ReportMetric(columns[0][segmentCount]*float64(b.N)/b.Elapsed().Seconds()/1e6, "Msegments/s")
@@ -95,7 +95,7 @@ func paths(b *testing.B, s *facets.Stone, n float64, kernel, averaged bool) {
 	out, columns := make([]Ledger, len(rays)), make([]sums, 2)
 	b.ReportAllocs()
 	for b.Loop() {
-		tr.followAll(rays, out, columns)
+		tr.followAll(rays, out, nil, columns)
 	}
 	b.ReportMetric((columns[0][segmentCount]+columns[1][segmentCount])/b.Elapsed().Seconds()/1e6, "Msegments/s")
 }

@@ -4,7 +4,10 @@ import (
 	"fmt"
 	"math"
 
+	"github.com/go-gl/mathgl/mgl64"
+
 	"pavilight/facets"
+	"pavilight/gems"
 )
 
 // faintShare is the share of a viewing ray below which its path is not split any
@@ -26,6 +29,8 @@ type tracer struct {
 	faint   float64   // faintShare, but where tests compare whole paths
 
 	averaged bool    // the two polarisations are averaged at every facet
+	light    *Light  // nil for the even light
+	below    float64 // luminance of what lies below
 	kernel   *kernel // the fast form; nil for float64 throughout
 	near     bool    // the eye stands at eyeAt; else it is far away
 	eyeAt    vec
@@ -37,7 +42,8 @@ func newTracer(s *facets.Stone, settings Settings) (*tracer, error) {
 	if err != nil {
 		return nil, err
 	}
-	t := &tracer{body: b, headCos: 2, faint: faintShare, averaged: settings.Averaged, bins: newAngleBins()}
+	t := &tracer{body: b, headCos: 2, faint: faintShare, averaged: settings.Averaged, bins: newAngleBins(),
+		light: settings.Light, below: settings.Below}
 	if settings.Head > 0 {
 		t.headCos = math.Cos(settings.Head.Radians())
 	}
@@ -101,7 +107,7 @@ func (t *tracer) follow(facet int, x vec, n, m float64, d dice, sums *sums) (l L
 	cosI := t.toEye[facet]
 	at := Fresnel(m, n, cosI)
 	l.Surface = at.Mean()
-	t.litSurface(facet, l.Surface, sums)
+	t.litSurface(2*cosI*cosI-1, l.Surface, sums)
 	if at.Total {
 		return l
 	}
@@ -165,12 +171,25 @@ func (t *tracer) follow(facet int, x vec, n, m float64, d dice, sums *sums) (l L
 	return l
 }
 
-// litSurface notes what the first surface shows under the even light: the light
-// from above where it mirrors that way, the head where it mirrors the head, what
-// lies below where it mirrors downward.
-func (t *tracer) litSurface(facet int, r float64, sums *sums) {
-	c := t.toEye[facet]
-	up := 2*c*c - 1
+// seen is the radiance that shows in a direction, relative to a white diffuser's.
+func (t *tracer) seen(d vec, w gems.Wavelength) float64 {
+	f := t.outline.frame
+	up := d.dot(f.eye)
+	switch {
+	case up <= 0:
+		return t.below
+	case up > t.headCos:
+		return 0
+	case t.light == nil:
+		return 1
+	}
+	return t.light.Radiance(mgl64.Vec3{d.dot(f.right), d.dot(f.up), up}, w)
+}
+
+// litSurface notes what the first surface shows under the even light, where it mirrors
+// in a direction with cosine up to the eye: the light from above, the head, or what
+// lies below.
+func (t *tracer) litSurface(up, r float64, sums *sums) {
 	switch {
 	case up <= 0:
 		sums[mirrorsBelow] += r

@@ -1,8 +1,9 @@
 package trace
 
-// Kernel names the form of arithmetic in which plain scenes are traced on this
-// processor: clean facets all around in one clear medium, under the even light. All
-// others are traced in float64.
+import "pavilight/gems"
+
+// Kernel names the form of arithmetic in which scenes of clean facets in one medium all
+// around are traced on this processor. All others are traced in float64.
 func Kernel() string {
 	if hasVectors() {
 		return "float32, eight rays at a time (AVX2)"
@@ -12,19 +13,24 @@ func Kernel() string {
 
 // ray is a viewing ray about to enter the stone.
 type ray struct {
-	facet  int32   // that it meets
-	column int32   // whose medium it comes through
-	at     vec     // where
-	n, m   float64 // index of the stone and of the medium, at its wavelength
-	die    dice    // for its end-game
+	facet      int32   // that it meets
+	column     int32   // whose medium it comes through
+	at, along  vec     // where, and in which direction, a unit vector
+	n, m       float64 // index of the stone and of the medium, at its wavelength
+	absorb     float64 // natural absorption of the stone there, per unit of the stone
+	wavelength gems.Wavelength
+	weight     float64 // in all means
+	die        dice    // for its end-game
 }
 
-// followAll does what follow does for many rays: it puts their ledgers in out and
-// the rest into the sums of their columns, the ledger too. Where there is a kernel
-// for this processor, and unless the caller wants float64, that is many times faster.
-func (t *tracer) followAll(rays []ray, out []Ledger, columns []sums) {
+// followAll does what follow does for many rays: it puts their ledgers in out and the
+// rest into the sums of their columns, the ledgers too. What each ray sees of a light
+// goes into lit; it is nil for the even light without colour, which the sums tell of.
+//
+// Without a kernel there must be neither light nor colour, nor a body that absorbs.
+func (t *tracer) followAll(rays []ray, out []Ledger, lit []float64, columns []sums) {
 	if t.kernel != nil {
-		t.kernel.follow(rays, out, columns)
+		t.kernel.follow(rays, out, lit, columns)
 	} else {
 		for i := range rays {
 			r := &rays[i]
@@ -32,6 +38,9 @@ func (t *tracer) followAll(rays []ray, out []Ledger, columns []sums) {
 		}
 	}
 	for i := range out {
-		columns[rays[i].column].addLedger(out[i])
+		var one sums
+		one.addLedger(out[i])
+		one[rayCount] = 1
+		columns[rays[i].column].addWeighted(rays[i].weight, &one)
 	}
 }

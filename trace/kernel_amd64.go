@@ -9,13 +9,16 @@ import (
 )
 
 // kernel is a tracer in float32 that follows many rays at the same time, eight to a
-// vector. It does what tracer.follow does, by the same method:
+// vector. It does what tracer.follow does, by the same method, and knows body colour
+// and lights besides:
 //
 //	aim     find the list of facets in the direction of the ray's farthest exit
 //	look    come back to the plane of the likeliest of them
 //	aim, look once more, and aim
 //	settle  come back to the plane of any of the list; who comes no nearer has arrived
+//	depart  find the directions in which their light leaves, where a light wants to know
 //	mirror  move those who have arrived to their exits and turn them
+//	dim     take off what the body absorbs, where it has a colour
 //	split   part their light into what goes through and what stays
 //	tally   put down what goes through in the rays' ledgers
 //	bin     and in the bins of the angle from the eye
@@ -61,10 +64,16 @@ func look(t *tables, f *flight)
 func settle(t *tables, f *flight)
 
 //go:noescape
+func depart(t *tables, f *flight)
+
+//go:noescape
 func mirrorAveraged(t *tables, f *flight)
 
 //go:noescape
 func mirrorPolarised(t *tables, f *flight)
+
+//go:noescape
+func dim(t *tables, f *flight)
 
 //go:noescape
 func splitAveraged(t *tables, f *flight)

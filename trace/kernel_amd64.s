@@ -356,6 +356,80 @@ pair:
 	VZEROUPPER
 	RET
 
+// func depart(t uintptr, f uintptr)
+// Requires: AVX, FMA3
+TEXT ·depart(SB), NOSPLIT, $0-16
+	// Find the directions in which light leaves.
+	MOVQ t+0(FP), AX
+	MOVQ f+8(FP), CX
+	LEAQ flight_groups+0(CX), CX
+	MOVQ tables_busy+0(AX), DX
+
+next:
+	MOVQ           tables_normals+0(AX), BX
+	MOVL           group_facet+0(CX), SI
+	VBROADCASTF128 (BX)(SI*8), Y0
+	MOVL           group_facet+16(CX), SI
+	VINSERTF128    $0x01, (BX)(SI*8), Y0, Y0
+	MOVL           group_facet+4(CX), SI
+	VBROADCASTF128 (BX)(SI*8), Y1
+	MOVL           group_facet+20(CX), SI
+	VINSERTF128    $0x01, (BX)(SI*8), Y1, Y1
+	MOVL           group_facet+8(CX), SI
+	VBROADCASTF128 (BX)(SI*8), Y2
+	MOVL           group_facet+24(CX), SI
+	VINSERTF128    $0x01, (BX)(SI*8), Y2, Y2
+	MOVL           group_facet+12(CX), SI
+	VBROADCASTF128 (BX)(SI*8), Y3
+	MOVL           group_facet+28(CX), SI
+	VINSERTF128    $0x01, (BX)(SI*8), Y3, Y3
+	VUNPCKLPS      Y1, Y0, Y4
+	VUNPCKLPS      Y3, Y2, Y5
+	VUNPCKHPS      Y1, Y0, Y0
+	VUNPCKHPS      Y3, Y2, Y1
+	VUNPCKLPD      Y5, Y4, Y2
+	VUNPCKHPD      Y5, Y4, Y3
+	VUNPCKLPD      Y1, Y0, Y4
+	VUNPCKHPD      Y1, Y0, Y0
+	VMULPS         group_dx+0(CX), Y2, Y0
+	VFMADD231PS    group_dy+0(CX), Y3, Y0
+	VFMADD231PS    group_dz+0(CX), Y4, Y0
+	VMAXPS         f358637bd<>+0(SB), Y0, Y0
+	VMOVUPS        group_eta+0(CX), Y1
+	VMULPS         Y1, Y1, Y5
+	VMOVUPS        f3f800000<>+0(SB), Y6
+	VSUBPS         Y5, Y6, Y6
+	VMULPS         Y0, Y0, Y7
+	VFMADD231PS    Y5, Y7, Y6
+	VMAXPS         f00000000<>+0(SB), Y6, Y5
+	VSQRTPS        Y5, Y5
+	VMULPS         Y1, Y0, Y0
+	VSUBPS         Y0, Y5, Y0
+	VMULPS         group_dx+0(CX), Y1, Y5
+	VFMADD231PS    Y2, Y0, Y5
+	VMOVUPS        Y5, group_outx+0(CX)
+	VMULPS         group_dy+0(CX), Y1, Y2
+	VFMADD231PS    Y3, Y0, Y2
+	VMOVUPS        Y2, group_outy+0(CX)
+	VMULPS         group_dz+0(CX), Y1, Y1
+	VFMADD231PS    Y4, Y0, Y1
+	VMOVUPS        Y1, group_outz+0(CX)
+	LEAQ           group__size+0(CX), CX
+	DECQ           DX
+	JNE            next
+	VZEROUPPER
+	RET
+
+DATA f358637bd<>+0(SB)/4, $0x358637bd
+DATA f358637bd<>+4(SB)/4, $0x358637bd
+DATA f358637bd<>+8(SB)/4, $0x358637bd
+DATA f358637bd<>+12(SB)/4, $0x358637bd
+DATA f358637bd<>+16(SB)/4, $0x358637bd
+DATA f358637bd<>+20(SB)/4, $0x358637bd
+DATA f358637bd<>+24(SB)/4, $0x358637bd
+DATA f358637bd<>+28(SB)/4, $0x358637bd
+GLOBL f358637bd<>(SB), RODATA|NOPTR, $32
+
 // func mirrorAveraged(t uintptr, f uintptr)
 // Requires: AVX, FMA3
 TEXT ·mirrorAveraged(SB), NOSPLIT, $0-16
@@ -418,6 +492,7 @@ next:
 	VMOVUPS        Y6, group_up+0(DX)
 	VMOVUPS        group_s+0(DX), Y0
 	VANDPS         group_arrived+0(DX), Y0, Y0
+	VMOVUPS        Y0, group_step+0(DX)
 	VADDPS         Y1, Y1, Y1
 	VANDPS         group_arrived+0(DX), Y1, Y1
 	VMOVUPS        group_x+0(DX), Y5
@@ -459,16 +534,6 @@ next:
 	JNE            next
 	VZEROUPPER
 	RET
-
-DATA f358637bd<>+0(SB)/4, $0x358637bd
-DATA f358637bd<>+4(SB)/4, $0x358637bd
-DATA f358637bd<>+8(SB)/4, $0x358637bd
-DATA f358637bd<>+12(SB)/4, $0x358637bd
-DATA f358637bd<>+16(SB)/4, $0x358637bd
-DATA f358637bd<>+20(SB)/4, $0x358637bd
-DATA f358637bd<>+24(SB)/4, $0x358637bd
-DATA f358637bd<>+28(SB)/4, $0x358637bd
-GLOBL f358637bd<>(SB), RODATA|NOPTR, $32
 
 DATA f3f804192<>+0(SB)/4, $0x3f804192
 DATA f3f804192<>+4(SB)/4, $0x3f804192
@@ -578,6 +643,7 @@ next:
 	VMOVUPS        Y0, group_sin2+0(DX)
 	VMOVUPS        group_s+0(DX), Y0
 	VANDPS         group_arrived+0(DX), Y0, Y0
+	VMOVUPS        Y0, group_step+0(DX)
 	VADDPS         Y1, Y1, Y1
 	VANDPS         group_arrived+0(DX), Y1, Y1
 	VMOVUPS        group_x+0(DX), Y5
@@ -639,6 +705,148 @@ DATA fc0000000<>+20(SB)/4, $0xc0000000
 DATA fc0000000<>+24(SB)/4, $0xc0000000
 DATA fc0000000<>+28(SB)/4, $0xc0000000
 GLOBL fc0000000<>(SB), RODATA|NOPTR, $32
+
+// func dim(t uintptr, f uintptr)
+// Requires: AVX, AVX2, FMA3
+TEXT ·dim(SB), NOSPLIT, $0-16
+	// Take off what the body has absorbed on the way.
+	MOVQ t+0(FP), AX
+	MOVQ f+8(FP), CX
+	LEAQ flight_groups+0(CX), CX
+	MOVQ tables_busy+0(AX), AX
+
+next:
+	VMOVUPS     group_step+0(CX), Y0
+	VMULPS      group_absorb+0(CX), Y0, Y0
+	VMULPS      fbfb8aa3b<>+0(SB), Y0, Y0
+	VMAXPS      fc2fc0000<>+0(SB), Y0, Y0
+	VROUNDPS    $0x00, Y0, Y1
+	VSUBPS      Y1, Y0, Y0
+	VMOVUPS     f377fe5fe<>+0(SB), Y2
+	VMOVUPS     f39218489<>+0(SB), Y3
+	VFMADD231PS Y0, Y2, Y3
+	VMOVUPS     f3aaec3ff<>+0(SB), Y2
+	VFMADD231PS Y0, Y3, Y2
+	VMOVUPS     f3c1d955b<>+0(SB), Y3
+	VFMADD231PS Y0, Y2, Y3
+	VMOVUPS     f3d635847<>+0(SB), Y2
+	VFMADD231PS Y0, Y3, Y2
+	VMOVUPS     f3e75fdf0<>+0(SB), Y3
+	VFMADD231PS Y0, Y2, Y3
+	VMOVUPS     f3f317218<>+0(SB), Y2
+	VFMADD231PS Y0, Y3, Y2
+	VMOVUPS     f3f800000<>+0(SB), Y3
+	VFMADD231PS Y0, Y2, Y3
+	VCVTTPS2DQ  Y1, Y0
+	VPSLLD      $0x17, Y0, Y0
+	VPADDD      Y3, Y0, Y0
+	VMOVUPS     group_i+0(CX), Y1
+	VMULPS      Y0, Y1, Y2
+	VMOVUPS     Y2, group_i+0(CX)
+	VSUBPS      Y2, Y1, Y1
+	VADDPS      group_absorbed+0(CX), Y1, Y1
+	VMOVUPS     Y1, group_absorbed+0(CX)
+	VMULPS      group_q+0(CX), Y0, Y1
+	VMOVUPS     Y1, group_q+0(CX)
+	VMULPS      group_u+0(CX), Y0, Y1
+	VMOVUPS     Y1, group_u+0(CX)
+	VMULPS      group_v+0(CX), Y0, Y0
+	VMOVUPS     Y0, group_v+0(CX)
+	LEAQ        group__size+0(CX), CX
+	DECQ        AX
+	JNE         next
+	VZEROUPPER
+	RET
+
+DATA fbfb8aa3b<>+0(SB)/4, $0xbfb8aa3b
+DATA fbfb8aa3b<>+4(SB)/4, $0xbfb8aa3b
+DATA fbfb8aa3b<>+8(SB)/4, $0xbfb8aa3b
+DATA fbfb8aa3b<>+12(SB)/4, $0xbfb8aa3b
+DATA fbfb8aa3b<>+16(SB)/4, $0xbfb8aa3b
+DATA fbfb8aa3b<>+20(SB)/4, $0xbfb8aa3b
+DATA fbfb8aa3b<>+24(SB)/4, $0xbfb8aa3b
+DATA fbfb8aa3b<>+28(SB)/4, $0xbfb8aa3b
+GLOBL fbfb8aa3b<>(SB), RODATA|NOPTR, $32
+
+DATA fc2fc0000<>+0(SB)/4, $0xc2fc0000
+DATA fc2fc0000<>+4(SB)/4, $0xc2fc0000
+DATA fc2fc0000<>+8(SB)/4, $0xc2fc0000
+DATA fc2fc0000<>+12(SB)/4, $0xc2fc0000
+DATA fc2fc0000<>+16(SB)/4, $0xc2fc0000
+DATA fc2fc0000<>+20(SB)/4, $0xc2fc0000
+DATA fc2fc0000<>+24(SB)/4, $0xc2fc0000
+DATA fc2fc0000<>+28(SB)/4, $0xc2fc0000
+GLOBL fc2fc0000<>(SB), RODATA|NOPTR, $32
+
+DATA f377fe5fe<>+0(SB)/4, $0x377fe5fe
+DATA f377fe5fe<>+4(SB)/4, $0x377fe5fe
+DATA f377fe5fe<>+8(SB)/4, $0x377fe5fe
+DATA f377fe5fe<>+12(SB)/4, $0x377fe5fe
+DATA f377fe5fe<>+16(SB)/4, $0x377fe5fe
+DATA f377fe5fe<>+20(SB)/4, $0x377fe5fe
+DATA f377fe5fe<>+24(SB)/4, $0x377fe5fe
+DATA f377fe5fe<>+28(SB)/4, $0x377fe5fe
+GLOBL f377fe5fe<>(SB), RODATA|NOPTR, $32
+
+DATA f39218489<>+0(SB)/4, $0x39218489
+DATA f39218489<>+4(SB)/4, $0x39218489
+DATA f39218489<>+8(SB)/4, $0x39218489
+DATA f39218489<>+12(SB)/4, $0x39218489
+DATA f39218489<>+16(SB)/4, $0x39218489
+DATA f39218489<>+20(SB)/4, $0x39218489
+DATA f39218489<>+24(SB)/4, $0x39218489
+DATA f39218489<>+28(SB)/4, $0x39218489
+GLOBL f39218489<>(SB), RODATA|NOPTR, $32
+
+DATA f3aaec3ff<>+0(SB)/4, $0x3aaec3ff
+DATA f3aaec3ff<>+4(SB)/4, $0x3aaec3ff
+DATA f3aaec3ff<>+8(SB)/4, $0x3aaec3ff
+DATA f3aaec3ff<>+12(SB)/4, $0x3aaec3ff
+DATA f3aaec3ff<>+16(SB)/4, $0x3aaec3ff
+DATA f3aaec3ff<>+20(SB)/4, $0x3aaec3ff
+DATA f3aaec3ff<>+24(SB)/4, $0x3aaec3ff
+DATA f3aaec3ff<>+28(SB)/4, $0x3aaec3ff
+GLOBL f3aaec3ff<>(SB), RODATA|NOPTR, $32
+
+DATA f3c1d955b<>+0(SB)/4, $0x3c1d955b
+DATA f3c1d955b<>+4(SB)/4, $0x3c1d955b
+DATA f3c1d955b<>+8(SB)/4, $0x3c1d955b
+DATA f3c1d955b<>+12(SB)/4, $0x3c1d955b
+DATA f3c1d955b<>+16(SB)/4, $0x3c1d955b
+DATA f3c1d955b<>+20(SB)/4, $0x3c1d955b
+DATA f3c1d955b<>+24(SB)/4, $0x3c1d955b
+DATA f3c1d955b<>+28(SB)/4, $0x3c1d955b
+GLOBL f3c1d955b<>(SB), RODATA|NOPTR, $32
+
+DATA f3d635847<>+0(SB)/4, $0x3d635847
+DATA f3d635847<>+4(SB)/4, $0x3d635847
+DATA f3d635847<>+8(SB)/4, $0x3d635847
+DATA f3d635847<>+12(SB)/4, $0x3d635847
+DATA f3d635847<>+16(SB)/4, $0x3d635847
+DATA f3d635847<>+20(SB)/4, $0x3d635847
+DATA f3d635847<>+24(SB)/4, $0x3d635847
+DATA f3d635847<>+28(SB)/4, $0x3d635847
+GLOBL f3d635847<>(SB), RODATA|NOPTR, $32
+
+DATA f3e75fdf0<>+0(SB)/4, $0x3e75fdf0
+DATA f3e75fdf0<>+4(SB)/4, $0x3e75fdf0
+DATA f3e75fdf0<>+8(SB)/4, $0x3e75fdf0
+DATA f3e75fdf0<>+12(SB)/4, $0x3e75fdf0
+DATA f3e75fdf0<>+16(SB)/4, $0x3e75fdf0
+DATA f3e75fdf0<>+20(SB)/4, $0x3e75fdf0
+DATA f3e75fdf0<>+24(SB)/4, $0x3e75fdf0
+DATA f3e75fdf0<>+28(SB)/4, $0x3e75fdf0
+GLOBL f3e75fdf0<>(SB), RODATA|NOPTR, $32
+
+DATA f3f317218<>+0(SB)/4, $0x3f317218
+DATA f3f317218<>+4(SB)/4, $0x3f317218
+DATA f3f317218<>+8(SB)/4, $0x3f317218
+DATA f3f317218<>+12(SB)/4, $0x3f317218
+DATA f3f317218<>+16(SB)/4, $0x3f317218
+DATA f3f317218<>+20(SB)/4, $0x3f317218
+DATA f3f317218<>+24(SB)/4, $0x3f317218
+DATA f3f317218<>+28(SB)/4, $0x3f317218
+GLOBL f3f317218<>(SB), RODATA|NOPTR, $32
 
 // func splitAveraged(t uintptr, f uintptr)
 // Requires: AVX, AVX2, FMA3
@@ -953,6 +1161,7 @@ next:
 	VMOVUPS      group_up+0(CX), Y0
 	VCMPPS       $0x1e, f00000000<>+0(SB), Y0, Y1
 	VANDPS       group_through+0(CX), Y1, Y1
+	VMULPS       group_weight+0(CX), Y1, Y1
 	VEXTRACTF128 $0x00, Y1, X2
 	VCVTPS2PD    X2, Y2
 	VMOVUPS      Y2, group_wide+0(CX)

@@ -3,6 +3,7 @@ package trace
 import (
 	"math"
 	"math/bits"
+	"slices"
 )
 
 // inFlight is how many rays are followed at the same time: enough to keep the
@@ -40,11 +41,16 @@ type group struct {
 	i, q, u, v eight // Stokes vector of what is left in the ray, of one unit
 	ax, ay, az eight // its axis a, see beam; b is direction × a
 	eta        eight // index of the stone over that of the medium
+	absorb     eight // natural absorption of the body, per unit of the stone
+	weight     eight // of the ray in all means
+	step       eight // to the exit, 0 where the ray has not arrived
 	c, g2      eight // at the surface: cosine of incidence, squared cosine of refraction
 	cos2, sin2 eight // and twice the angle between a and the plane of incidence
 
 	through, up            eight     // what goes through at the surface, and its cosine to the eye
+	outx, outy, outz       eight     // its direction, unit, where a light wants to know
 	returned, head, leaked eight     // ledger so far
+	absorbed               eight     // likewise
 	unmet, windowed        eightInts // -1 where the pavilion is not met yet, where one sees through it
 	bounces                eightInts // so far
 	die                    eightInts // of the end-game
@@ -52,7 +58,7 @@ type group struct {
 
 	wide [8]float64 // scratch
 	over int32      // bit i is set if the path of ray i is over
-	_    [15]int32  // to a whole number of cache lines
+	_    [7]int32   // to a whole number of cache lines
 }
 
 // tables is what the passes look up, and how much of the flight is in use.
@@ -74,6 +80,7 @@ type errand struct {
 	*kernel
 	rays    []ray
 	out     []Ledger
+	lit     []float64 // luminance seen by each; nil where none is wanted
 	columns []sums
 
 	flight *flight
@@ -83,19 +90,20 @@ type errand struct {
 	next   int             // number of the next ray to enter
 }
 
-// follow follows rays and puts their ledgers in out, and the rest into the sums of
-// their columns.
-func (k *kernel) follow(rays []ray, out []Ledger, columns []sums) {
-	t := k.tracer
-	e := &errand{kernel: k, rays: rays, out: out, columns: columns, bins: make([]eyeBins, len(columns))}
-	e.flight = k.newFlight()
+// follow does what tracer.followAll promises, but for adding up the ledgers.
+func (k *kernel) follow(rays []ray, out []Ledger, lit []float64, columns []sums) {
+	e := &errand{
+		kernel: k, rays: rays, out: out, lit: lit, columns: columns,
+		flight: k.newFlight(), bins: make([]eyeBins, len(columns)),
+	}
 	for e.live < inFlight && e.enter(e.live) {
 		e.live++
 	}
 	mirror, split := mirrorPolarised, splitPolarised
-	if t.averaged {
+	if k.tracer.averaged {
 		mirror, split = mirrorAveraged, splitAveraged
 	}
+	coloured := slices.ContainsFunc(rays, func(r ray) bool { return r.absorb > 0 })
 	in, f := &tables{&k.cells[0], &k.lists[0], &k.planes[0], &k.normals[0], &e.bins[0][0][0], 0}, e.flight
 	for e.live > 0 {
 		in.busy = (e.live + 7) / 8
@@ -105,10 +113,19 @@ func (k *kernel) follow(rays []ray, out []Ledger, columns []sums) {
 		look(in, f)
 		aim(in, f)
 		settle(in, f)
+		if lit != nil {
+			depart(in, f)
+		}
 		mirror(in, f)
+		if coloured {
+			dim(in, f)
+		}
 		split(in, f)
 		tally(in, f)
 		bin(in, f)
+		if lit != nil {
+			e.shine(in.busy)
+		}
 		e.replace(in.busy)
 	}
 	for c := range e.bins {
@@ -116,6 +133,29 @@ func (k *kernel) follow(rays []ray, out []Ledger, columns []sums) {
 			for bin, share := range e.bins[c][place] {
 				columns[c][firstFrom+bin] += share
 			}
+		}
+	}
+}
+
+// shine notes what is seen through the facets where light leaves.
+func (e *errand) shine(busy int) {
+	o := e.tracer.outline
+	for n := range busy {
+		g := &e.flight.groups[n]
+		for i, through := range g.through {
+			if through == 0 {
+				continue
+			}
+			number := e.ray[8*n+i]
+			r := &e.rays[number]
+			out := vec{float64(g.outx[i]), float64(g.outy[i]), float64(g.outz[i])}
+			seen := float64(through) * e.tracer.seen(out, r.wavelength)
+			e.lit[number] += seen
+			slot := litReturned
+			if out.dot(o.eye) <= 0 {
+				slot = litLeaked
+			}
+			e.columns[r.column][slot] += r.weight * seen
 		}
 	}
 }
@@ -157,21 +197,30 @@ func (e *errand) replace(busy int) {
 // enter brings the next ray into the stone, to a place in the flight; it returns false
 // when there is none. Rays that do not get into the stone are done at once.
 func (e *errand) enter(place int) bool {
-	t, eye := e.tracer, e.tracer.outline.eye
+	t := e.tracer
 	for e.next < len(e.rays) {
 		r, l := &e.rays[e.next], &e.out[e.next]
 		e.ray[place] = int32(e.next)
 		e.next++
 
 		// Split at the first surface.
-		n, cosI := t.body.normal[r.facet], t.toEye[r.facet]
+		n := t.body.normal[r.facet]
+		cosI := -r.along.dot(n)
 		at := Fresnel(r.m, r.n, cosI)
 		*l = Ledger{Surface: at.Mean()}
-		t.litSurface(int(r.facet), l.Surface, &e.columns[r.column])
+		sums := &e.columns[r.column]
+		mirrored := r.along.plus(2*cosI, n)
+		if e.lit == nil {
+			t.litSurface(mirrored.dot(t.outline.eye), l.Surface, sums)
+		} else {
+			seen := l.Surface * t.seen(mirrored, r.wavelength)
+			e.lit[e.next-1] = seen
+			sums[litSurface] += r.weight * seen
+		}
 		if at.Total {
 			continue
 		}
-		dir := refract(eye.scale(-1), n.scale(-1), r.m/r.n, cosI, at.CosT)
+		dir := refract(r.along, n.scale(-1), r.m/r.n, cosI, at.CosT)
 		light := enterBeam(at, dir, n)
 
 		g, i := &e.flight.groups[place/8], place%8
@@ -184,8 +233,8 @@ func (e *errand) enter(place int) bool {
 		g.facet[i] = 0
 		g.i[i], g.q[i], g.u[i], g.v[i] = float32(light.i), float32(light.q), float32(light.u), float32(light.v)
 		g.ax[i], g.ay[i], g.az[i] = float32(light.a.x), float32(light.a.y), float32(light.a.z)
-		g.eta[i] = float32(r.n / r.m)
-		g.returned[i], g.head[i], g.leaked[i] = 0, 0, 0
+		g.eta[i], g.absorb[i], g.weight[i] = float32(r.n/r.m), float32(r.absorb), float32(r.weight)
+		g.returned[i], g.head[i], g.leaked[i], g.absorbed[i] = 0, 0, 0, 0
 		g.unmet[i], g.windowed[i], g.bounces[i] = -1, 0, 0
 		g.die[i] = int32(r.die)
 		g.bins[i] = (r.column*8 + int32(i)) * fromBins * 8
@@ -201,15 +250,16 @@ const sphere = 1.001
 // leave writes the ledger of a ray whose path is over.
 func (e *errand) leave(place int) {
 	g, i := &e.flight.groups[place/8], place%8
-	l, sums := &e.out[e.ray[place]], &e.columns[e.rays[e.ray[place]].column]
+	r, l := &e.rays[e.ray[place]], &e.out[e.ray[place]]
+	sums := &e.columns[r.column]
 	l.Returned, l.Head, l.Leaked = float64(g.returned[i]), float64(g.head[i]), float64(g.leaked[i])
-	l.Unresolved = float64(g.i[i])
+	l.Absorbed, l.Unresolved = float64(g.absorbed[i]), float64(g.i[i])
 	sums[segmentCount] += float64(g.bounces[i])
 	if l.Leaked > 0.5 {
-		sums[leakyArea]++
+		sums[leakyArea] += r.weight
 	}
 	if g.windowed[i] != 0 {
-		sums[windowedArea]++
+		sums[windowedArea] += r.weight
 	}
 }
 
@@ -224,8 +274,8 @@ func (e *errand) move(from, to int) {
 	b.s[j], b.facet[j] = a.s[i], a.facet[i]
 	b.i[j], b.q[j], b.u[j], b.v[j] = a.i[i], a.q[i], a.u[i], a.v[i]
 	b.ax[j], b.ay[j], b.az[j] = a.ax[i], a.ay[i], a.az[i]
-	b.eta[j] = a.eta[i]
-	b.returned[j], b.head[j], b.leaked[j] = a.returned[i], a.head[i], a.leaked[i]
+	b.eta[j], b.absorb[j], b.weight[j] = a.eta[i], a.absorb[i], a.weight[i]
+	b.returned[j], b.head[j], b.leaked[j], b.absorbed[j] = a.returned[i], a.head[i], a.leaked[i], a.absorbed[i]
 	b.unmet[j], b.windowed[j], b.bounces[j] = a.unmet[i], a.windowed[i], a.bounces[i]
 	b.die[j], b.bins[j] = a.die[i], a.bins[i]
 	a.i[i], a.q[i], a.u[i], a.v[i] = 0, 0, 0, 0

@@ -11,4 +11,4 @@ func newKernel(*tracer) *kernel { return nil }
 
 func (*kernel) cutAt(float64, int) {}
 
-func (*kernel) follow([]ray, []Ledger, []sums) {}
+func (*kernel) follow([]ray, []Ledger, []float64, []sums) {}

@@ -12,6 +12,7 @@ import (
 	"github.com/go-gl/mathgl/mgl64"
 
 	"pavilight/facets"
+	"pavilight/gems"
 )
 
 // brilliant is a round brilliant of 121 facets, width 2: table 56 %, crown 34°,
@@ -56,7 +57,10 @@ func kernelRays(tr *tracer, n float64, number int, rng *rand.Rand) (rays []ray) 
 		facet, x, ok := tr.outline.enter((2*rng.Float64()-1)*tr.outline.half, (2*rng.Float64()-1)*tr.outline.half)
 		if ok {
 			column := len(rays) % 2
-			rays = append(rays, ray{int32(facet), int32(column), x, n + 0.01*rng.Float64(), []float64{1, 1.333}[column], dice(rng.Uint32())})
+			rays = append(rays, ray{
+				facet: int32(facet), column: int32(column), at: x, along: tr.outline.eye.scale(-1),
+				n: n + 0.01*rng.Float64(), m: []float64{1, 1.333}[column], weight: 1, die: dice(rng.Uint32()),
+			})
 		}
 	}
 	return rays
@@ -87,8 +91,8 @@ func TestKernelAgainstFloat64(t *testing.T) {
 				rays := kernelRays(tr, 1.6+rng.Float64(), number, rng)
 				want, got := make([]Ledger, number), make([]Ledger, number)
 				wantSums, gotSums := make([]sums, 2), make([]sums, 2)
-				tr.followAll(rays, want, wantSums)
-				fast.followAll(rays, got, gotSums)
+				tr.followAll(rays, want, nil, wantSums)
+				fast.followAll(rays, got, nil, gotSums)
 
 				// Whole ways differ for rays astray; the others differ by rounding alone.
 				astray := 0
@@ -110,7 +114,8 @@ func TestKernelAgainstFloat64(t *testing.T) {
 				if astray > number/500 {
 					t.Errorf("%d of %d rays go another way", astray, number)
 				}
-				if worst := difference(rounding, Ledger{}).Max(); worst > 1e-6 {
+				// Where all rays meet a facet at one angle, as in a prism, rounding is alike for all.
+				if worst := difference(rounding, Ledger{}).Max(); worst > 5e-6 {
 					t.Errorf("rays that go the same way differ by %.2g in the mean", worst)
 				}
 				// The rays astray go either way at random, each by less than 1.
@@ -128,6 +133,118 @@ func TestKernelAgainstFloat64(t *testing.T) {
 				}
 			})
 		}
+	}
+}
+
+// TestKernelKnowsLights compares whole runs in both forms, from the same sample points,
+// in scenes that float64 traces by its general tracer: lights, colour, a body that
+// absorbs, an eye that is near.
+func TestKernelKnowsLights(t *testing.T) {
+	tinted := *plain(t, "tinted", 1.76)
+	tinted.Absorption = &gems.Absorption{Wavelengths: []gems.Wavelength{400, 700}, Ordinary: []float64{0.3, 0.05}, Extraordinary: []float64{0.2, 0.01}}
+	light := func(name string) *Light {
+		l, err := FindLight(name)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return l
+	}
+	clear := plain(t, "clear", 1.62)
+	view, head := View{Tilt: 9 * facets.Degree, Turn: 33 * facets.Degree}, 10*facets.Degree
+	for _, test := range []struct {
+		name     string
+		material *gems.Material
+		settings Settings
+	}{
+		{"sky", clear, Settings{View: view, Head: head, Light: light("clear"), Below: 0.3, Wavelength: 550}},
+		{"lamps in colour", clear, Settings{View: view, Head: head, Light: light("lamps"), Colour: true}},
+		{"even light in colour", clear, Settings{View: view, Head: head, Colour: true, Below: 0.5}},
+		{"body colour", &tinted, Settings{View: view, Head: head, Below: 0.2}},
+		{"body colour in colour, near", &tinted, Settings{View: view, Head: head, Light: light("overcast"), Colour: true, Distance: 60, Aside: 5}},
+		{"near, averaged", clear, Settings{View: view, Head: head, Distance: 60, Averaged: true, Below: 1, Wavelength: 500}},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			if !hasVectors() {
+				t.Skip("this processor has no kernel")
+			}
+			scene := Scene{Stone: stones(t)["round.toml"], Material: test.material, Surroundings: Around(plain(t, "air", 1), plain(t, "water", 1.333))}
+			test.settings.Pixels, test.settings.Samples, test.settings.Seed = 12, 100, 5
+			got := mustRun(t, scene, test.settings)
+			test.settings.exact = true
+			want := mustRun(t, scene, test.settings)
+			if got.Rays != want.Rays {
+				t.Fatalf("%d rays, want %d", got.Rays, want.Rays)
+			}
+			// One ray in a thousand goes another way, by rounding, at random; the end-game of
+			// faint paths is another too.
+			stray := 5*math.Sqrt(0.001/float64(got.Rays)) + 1e-5
+			close := func(what string, got, want float64) {
+				t.Helper()
+				if !(math.Abs(got-want) <= stray) {
+					t.Errorf("%s: %.7f, want %.7f within %.1g", what, got, want, stray)
+				}
+			}
+			for k := range got.Columns {
+				a, b := &got.Columns[k], &want.Columns[k]
+				for q := range quantities {
+					close(q.String(), q.Of(a.Ledger), q.Of(b.Ledger))
+				}
+				close("lit surface", a.Lit.Surface, b.Lit.Surface)
+				close("lit returned", a.Lit.Returned, b.Lit.Returned)
+				close("lit leaked", a.Lit.Leaked, b.Lit.Leaked)
+				close("leaky area", a.LeakyArea, b.LeakyArea)
+				close("windowed area", a.WindowedArea, b.WindowedArea)
+				for i := range a.From {
+					close("from", a.From[i], b.From[i])
+				}
+				colour := b.Map.XYZ()
+				for i, c := range a.Map.XYZ() {
+					for j := range c {
+						if d := math.Abs(float64(c[j] - colour[i][j])); d > 0.02 {
+							t.Errorf("pixel %d: XYZ %v, want %v", i, c, colour[i])
+						}
+					}
+				}
+			}
+		})
+	}
+}
+
+// TestKernelDims compares rays in a body that absorbs with the general tracer, one by one.
+func TestKernelDims(t *testing.T) {
+	stone := plain(t, "tinted", 1.76)
+	stone.Absorption = &gems.Absorption{Wavelengths: []gems.Wavelength{400}, Ordinary: []float64{0.2}}
+	scene := Scene{Stone: stones(t)["round.toml"], Material: stone, Surroundings: Around(plain(t, "air", 1))}
+	settings := Settings{View: View{Tilt: 9 * facets.Degree, Turn: 33 * facets.Degree}}
+	tr, err := newTracer(scene.Stone, settings)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if tr.kernel = newKernel(tr); tr.kernel == nil {
+		t.Skip("this processor has no kernel")
+	}
+	const number = 5000
+	rays := kernelRays(tr, 1.76, number, rand.New(rand.NewPCG(5, 5)))
+	general := scene.traveller(0, settings, tr)
+	var at lambda
+	general.look(550, stone, &at)
+	for i := range rays {
+		rays[i].column, rays[i].n, rays[i].m, rays[i].absorb = 0, at.stone, 1, at.absorb
+	}
+	got := make([]Ledger, number)
+	tr.followAll(rays, got, nil, make([]sums, 1))
+	astray, absorbed := 0, 0.0
+	for i := range rays {
+		var none sums
+		want := general.send(int(rays[i].facet), rays[i].at, rays[i].along, &at, rays[i].die, &none)
+		absorbed += want.Absorbed / number
+		// Ray by ray the end-game of faint paths differs by what they carry.
+		if difference(got[i], want).Max() > 2*faintShare {
+			astray++
+		}
+	}
+	if astray > number/500 || absorbed < 0.2 {
+		t.Errorf("%d of %d rays differ; %.2f is absorbed", astray, number, absorbed)
 	}
 }
 
@@ -175,7 +292,7 @@ func TestKernelHasNoOldInstructions(t *testing.T) {
 		}
 		last = name
 	}
-	if vectors < 500 || returns != 9 {
+	if vectors < 500 || returns != 11 {
 		t.Errorf("%d vector instructions and %d passes found: the test looks in the wrong place", vectors, returns)
 	}
 }

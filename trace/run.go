@@ -107,7 +107,7 @@ func newRun(scene Scene, settings Settings) (*run, error) {
 		r.points[i] = newPoints(settings.Seed, i)
 	}
 	r.images = 1
-	if s := r.tracer.symmetry(scene.Stone, scene.byTier()); len(s.images) > 1 && settings.Light == nil && !scene.leans(r.tracer.outline.eye) {
+	if s := r.tracer.symmetry(scene.Stone, scene.byTier()); len(s.images) > 1 && (settings.Light == nil || settings.Light.turns()) && !scene.leans(r.tracer.outline.eye) {
 		r.symmetry, r.images = &s, len(s.images)
 	}
 	inside := r.tracer.mask(settings.Pixels)
@@ -120,7 +120,7 @@ func newRun(scene Scene, settings Settings) (*run, error) {
 	for k := range r.columns {
 		c := &r.columns[k]
 		c.mapped = newMap(settings.Pixels, 2*r.tracer.outline.half*r.tracer.body.unit, inside, settings.Colour)
-		if !scene.plain(k, settings) {
+		if !scene.plain(k, settings) && !(r.tracer.kernel != nil && scene.clean(k, settings)) {
 			c.traveller = scene.traveller(k, settings, r.tracer)
 		}
 	}
@@ -255,11 +255,18 @@ func (r *run) trace(unit, scrambling, number int) *chunk {
 		}
 	}
 	ledgers := make([]Ledger, len(rays))
-	r.tracer.followAll(rays, ledgers, c.sums)
+	var lit []float64
+	if r.settings.lit() {
+		lit = make([]float64, len(rays))
+	}
+	r.tracer.followAll(rays, ledgers, lit, c.sums)
+	n := len(c.entries)
 	for k := range r.columns {
 		if r.columns[k].traveller == nil {
-			c.sums[k][rayCount] = float64(len(c.entries))
-			c.ledgers[k], ledgers = ledgers[:len(c.entries)], ledgers[len(c.entries):]
+			c.ledgers[k], ledgers = ledgers[:n], ledgers[n:]
+			if lit != nil {
+				c.lit[k], lit = lit[:n], lit[n:]
+			}
 		}
 	}
 	return c
@@ -314,7 +321,8 @@ func (r *run) plainRays(rays []ray, points points, column int, entries []entry) 
 		e := &entries[i]
 		n, _ := r.scene.Material.Index(e.wavelength)
 		m, _ := medium.Index(e.wavelength)
-		rays = append(rays, ray{e.facet, int32(column), e.at, n, m, newDice(points, e.point, column)})
+		absorb := meanAbsorption(r.scene.Material.Absorption, e.wavelength) * r.tracer.body.unit
+		rays = append(rays, ray{e.facet, int32(column), e.at, e.along, n, m, absorb, e.wavelength, e.xyz[1], newDice(points, e.point, column)})
 	}
 	return rays
 }
@@ -378,8 +386,10 @@ func (r *run) result() *Result {
 		}
 		c.IndexStone, _ = r.scene.Material.Index(shown) // both known to exist since newRun
 		c.IndexMedium, _ = c.Medium.Index(shown)
-		if r.columns[k].traveller != nil {
+		if r.columns[k].traveller != nil || r.settings.lit() {
 			c.Lit = mean.litByLight()
+		}
+		if r.columns[k].traveller != nil {
 			if leaves := c.Ledger.Returned + c.Ledger.Head + c.Ledger.Leaked; leaves > 0 {
 				c.PathLength = mean[pathLength] / leaves * r.tracer.body.unit
 			}

@@ -96,12 +96,18 @@ func (s Scene) leans(eye vec) bool {
 	return s.double() && fromMgl(s.Axis.Normalize()).cross(eye).length() > along
 }
 
-// plain reports whether column k is clean facets in one clear medium, under the even
-// light, seen from afar: what the fast tracer knows.
-func (s Scene) plain(k int, settings Settings) bool {
+// clean reports whether column k is clean facets in one medium, far away from anything
+// else: what a kernel knows.
+func (s Scene) clean(k int, settings Settings) bool {
 	around := s.Surroundings[k]
 	return !s.double() && !around.Dish && len(around.Tiers) == 0 && len(s.Coatings) == 0 && s.Ground == nil && s.Setting == nil &&
-		s.Material.Absorption == nil && settings.Light == nil && settings.Distance == 0 && !settings.Colour && !settings.Paths
+		!settings.Paths
+}
+
+// plain reports whether column k is clean facets of a clear stone, under the even light,
+// seen from afar: what the tracer without a kernel knows.
+func (s Scene) plain(k int, settings Settings) bool {
+	return s.clean(k, settings) && s.Material.Absorption == nil && settings.Distance == 0 && !settings.lit()
 }
 
 // byTier reports whether it matters which tier a facet belongs to.
@@ -202,7 +208,7 @@ func (s Scene) known(w gems.Wavelength) error {
 // traveller returns the general tracer for column k.
 func (s Scene) traveller(k int, settings Settings, plain *tracer) *traveller {
 	around := s.Surroundings[k]
-	t := &traveller{tracer: plain, colour: s.Material.Absorption, light: settings.Light, below: settings.Below}
+	t := &traveller{tracer: plain, colour: s.Material.Absorption}
 	if s.double() {
 		a := fromMgl(s.Axis.Normalize())
 		t.axis = &a

@@ -36,6 +36,9 @@ type Settings struct {
 	exact bool // trace in float64, also where there is a fast kernel in float32
 }
 
+// lit reports whether more must be known of the light seen than a ledger tells.
+func (s Settings) lit() bool { return s.Light != nil || s.Colour }
+
 // check refuses settings that mean nothing.
 func (s Settings) check() error {
 	in := func(name string, v, lo, hi float64) error {

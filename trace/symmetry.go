@@ -5,6 +5,8 @@ import (
 	"math"
 	"slices"
 
+	"github.com/go-gl/mathgl/mgl64"
+
 	"pavilight/facets"
 )
 
@@ -82,6 +84,19 @@ func (t *tracer) symmetry(s *facets.Stone, byTier bool) (found symmetry) {
 		}
 	}
 	return found
+}
+
+// turns reports whether a light is the same all around the line of sight, so that it
+// leaves a stone its symmetry.
+func (l *Light) turns() bool {
+	switch s := l.shape.(type) {
+	case evenShape, ringShape:
+		return true
+	case *skyShape:
+		_, overcast := s.distribution.(overcastSky)
+		return overcast && s.inSky.Mul3x1(mgl64.Vec3{0, 0, 1})[2] > 1-1e-12 && s.sunLuminance == 0
+	}
+	return false
 }
 
 // ring is the facets that differ only in their azimuth in the picture.

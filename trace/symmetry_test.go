@@ -6,6 +6,8 @@ import (
 	"math"
 	"testing"
 
+	"github.com/go-gl/mathgl/mgl64"
+
 	"pavilight/facets"
 	"pavilight/gems"
 )
@@ -50,6 +52,38 @@ func TestSymmetryIsFound(t *testing.T) {
 		}
 		if s := tr.symmetry(test.stone, false); s.turns != test.turns || s.mirror != test.mirror {
 			t.Errorf("%s: %d turns, mirror %v; want %d, %v (%s)", test.name, s.turns, s.mirror, test.turns, test.mirror, source)
+		}
+	}
+}
+
+func TestLightsThatTurn(t *testing.T) {
+	for _, test := range []struct {
+		name   string
+		zenith []mgl64.Vec3
+		want   bool
+	}{
+		{"even", nil, true},
+		{"ring", nil, true},
+		{"overcast", nil, true},
+		{"overcast", []mgl64.Vec3{{0, 1, 1}}, false},
+		{"clear", nil, false},
+		{"sun", nil, false},
+		{"room", nil, false},
+		{"lamps", nil, false},
+	} {
+		l, err := FindLight(test.name, test.zenith...)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if l.turns() != test.want {
+			t.Errorf("%s, zenith %v: turns %v", test.name, test.zenith, !test.want)
+		}
+		// What is said to turn must shine alike from all around.
+		for k := range 8 {
+			sin, cos := math.Sincos(float64(k))
+			if a, b := l.Luminance(mgl64.Vec3{0.6 * cos, 0.6 * sin, 0.8}), l.Luminance(mgl64.Vec3{0.6, 0, 0.8}); l.turns() && math.Abs(a-b) > 1e-12 {
+				t.Errorf("%s turns, but shines %v and %v", test.name, a, b)
+			}
 		}
 	}
 }

@@ -3,8 +3,6 @@ package trace
 import (
 	"math"
 
-	"github.com/go-gl/mathgl/mgl64"
-
 	"pavilight/facets"
 	"pavilight/gems"
 )
@@ -26,8 +24,6 @@ type traveller struct {
 	dish   *dish            // nil where the medium goes on for ever
 	under  *under           // nil where light that leaves downward goes on for ever
 	cup    *cup             // nil without a setting
-	light  *Light           // nil for the even light
-	below  float64          // luminance of what lies below
 }
 
 // dish is a flat liquid surface across the line of sight, above the stone.
@@ -93,10 +89,16 @@ func (t *traveller) look(w gems.Wavelength, stone *gems.Material, at *lambda) {
 		p, _ := stone.Indices(w)
 		o, e := t.colour.Coefficient(w)
 		at.twin = twin{newCrystal(*t.axis, p.Ordinary(), p.Extraordinary()), o * t.body.unit, e * t.body.unit}
-	} else if t.colour != nil {
-		o, e := t.colour.Coefficient(w)
-		at.absorb = (2*o + e) / 3 * t.body.unit // the mean over directions, to first order
+	} else {
+		at.absorb = meanAbsorption(t.colour, w) * t.body.unit
 	}
+}
+
+// meanAbsorption is the natural absorption per mm that light meets in the mean over all
+// directions, to first order; 0 for no colour.
+func meanAbsorption(colour *gems.Absorption, w gems.Wavelength) float64 {
+	o, e := colour.Coefficient(w)
+	return (2*o + e) / 3
 }
 
 // journey is what one ray gathers.
@@ -397,16 +399,7 @@ func (j *journey) put(q Quantity, power float64, d vec, path float64) {
 		j.sums[firstFrom+j.bins.of(up)] += power
 	}
 	j.sums[pathLength] += power * path
-	switch {
-	case up <= 0:
-		j.sums[lit] += power * j.below
-	case up > j.headCos: // dark
-	case j.light == nil:
-		j.sums[lit] += power
-	default:
-		f := j.outline.frame
-		j.sums[lit] += power * j.light.Radiance(mgl64.Vec3{d.dot(f.right), d.dot(f.up), up}, j.w)
-	}
+	j.sums[lit] += power * j.seen(d, j.w)
 }
 
 // entry returns the facet through which a ray from x outside along the unit vector d

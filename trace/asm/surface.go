@@ -14,11 +14,8 @@ func mirror(name string, polarised bool) {
 		// The least cosine turns back a grazing ray that rounding would let pass by.
 		c := larger(dot(n, direction()), number(leastCosine))
 		store(c, ray("c"))
-		// Snell: g² = 1 - e²(1 - c²), negative under total reflection.
 		e := load(ray("eta"))
-		e2, g2 := mul(e, e), load(one())
-		g2 = sub(g2, e2)
-		addProduct(g2, mul(c, c), e2)
+		g2 := refracted(c, e)
 		store(g2, ray("g2"))
 		// The cosine between the way out and the eye; of no meaning under total reflection.
 		eye := triple{load(all("eyex")), load(all("eyey")), load(all("eyez"))}
@@ -32,6 +29,7 @@ func mirror(name string, polarised bool) {
 		}
 
 		step := and(load(ray("s")), ray("arrived"))
+		store(step, ray("step"))
 		turn := and(add(c, c), ray("arrived"))
 		var xx, xd vector // x.x and x.d
 		for i, axis := range []struct{ x, d, n Op }{

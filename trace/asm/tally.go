@@ -37,7 +37,7 @@ func tally() {
 func bin() {
 	eachGroup("bin", "Add what leaves upward to the bins by angle from the eye.", func() {
 		up := load(ray("up"))
-		share := and(compare(up, moreThan, zero()), ray("through"))
+		share := mul(and(compare(up, moreThan, zero()), ray("through")), ray("weight"))
 		wide := ctx.YMM()
 		for half := range 2 {
 			four := ctx.XMM()
