@@ -220,6 +220,12 @@ func (s sight) finite() sight {
 	return s
 }
 
+// fitted is how large a stone comes out of its rough.
+type fitted struct {
+	scale float64 // of the pattern's size
+	yield float64 // share of the rough
+}
+
 // see builds and traces one stone.
 func (j *judge) see(ctx context.Context, values []float64, e effort) (s sight, err error) {
 	for i, v := range j.Variables {
@@ -236,22 +242,22 @@ func (j *judge) see(ctx context.Context, values []float64, e effort) (s sight, e
 		return sight{Words: strings.Split(err.Error(), "\n"), Short: noStone}, nil
 	}
 	m := stone.Measure()
-	grown := 1.0 // in volume, until the rough holds the stone no more
+	size := fitted{1, 1}
 	if j.Rough != nil {
-		scale, err := j.Rough.Scale(stone)
+		fit, err := j.Rough.Fit(stone)
 		if err != nil {
 			return sight{Words: strings.Split(err.Error(), "\n"), Short: noStone}, nil
 		}
-		grown = scale * scale * scale
+		size = fitted{fit.Scale, fit.Yield}
 	}
-	for _, b := range j.Limits.broken(stone, &m, j, grown) {
+	for _, b := range j.Limits.broken(stone, &m, j, size) {
 		s.Words = append(s.Words, b.Words)
 		s.Short += min(b.By, noStone/10)
 	}
 	if len(s.Words) > 0 && !e.always {
 		return s, nil
 	}
-	carats := m.Carats(j.Material.Density) * grown
+	carats := m.Carats(j.Material.Density) * math.Pow(size.scale, 3)
 	s.Values, s.Errors = make([][]float64, len(j.Goal.Cases)), make([][]float64, len(j.Goal.Cases))
 	err = j.look(ctx, stone, carats, e, &s)
 	if err != nil && ctx.Err() == nil {

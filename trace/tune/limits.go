@@ -18,9 +18,9 @@ type Breach struct {
 	Words string
 }
 
-// broken returns the limits that a stone does not keep. grown is by how much its volume
-// may grow until the rough holds it no more.
-func (l *Limits) broken(s *facets.Stone, m *facets.Measures, j *judge, grown float64) []Breach {
+// broken returns the limits that a stone does not keep when it comes out of its rough at
+// a size.
+func (l *Limits) broken(s *facets.Stone, m *facets.Measures, j *judge, size fitted) []Breach {
 	var bs []Breach
 	material, ratio := j.Material, j.ratio
 	atLeast := func(what string, got, want float64, unit string) {
@@ -33,16 +33,16 @@ func (l *Limits) broken(s *facets.Stone, m *facets.Measures, j *judge, grown flo
 			bs = append(bs, Breach{(got - want) / want, fmt.Sprintf("%s is %.4g%s, more than %.4g%s", what, got, unit, want, unit)})
 		}
 	}
-	atLeast("the girdle", m.GirdleMM.Min, l.GirdleMM, " mm")
+	atLeast("the girdle", m.GirdleMM.Min*size.scale, l.GirdleMM, " mm")
 	atMost("the depth", m.DepthPercent, l.MostDepthPercent, " %")
 	atMost("the crown", m.CrownHeightPercent, l.MostCrownPercent, " %")
-	atLeast("the weight", m.Carats(material.Density)*grown, l.LeastCarats, " ct")
+	atLeast("the weight", m.Carats(material.Density)*math.Pow(size.scale, 3), l.LeastCarats, " ct")
 	if j.Rough != nil {
-		atLeast("the yield", m.VolumeMM3*grown/j.Rough.VolumeMM3(), l.LeastYield, "")
+		atLeast("the yield", size.yield, l.LeastYield, "")
 	}
 	if l.LeastFacetMM > 0 {
 		f, width := narrowest(s)
-		atLeast("the narrowest facet, "+facetName(s.Facets[f])+",", width, l.LeastFacetMM, " mm")
+		atLeast("the narrowest facet, "+facetName(s.Facets[f])+",", width*size.scale, l.LeastFacetMM, " mm")
 	}
 	if l.KeepRatio > 0 && ratio > 0 {
 		atMost("the change of length over width, as a share,", math.Abs(m.Ratio/ratio-1), l.KeepRatio, "")

@@ -22,7 +22,7 @@ const (
 	HeadShade                   // what the viewer's head darkens
 	LeakyArea                   // share of rays with leaked > 0.5
 	WindowedArea                // share of rays that see through the pavilion
-	Weight                      // carats of the finished stone, see Problem.Rough
+	Weight                      // carats of the finished stone, of the size that fits the rough where there is one
 	Luminance                   // of the stone as an eye sees it under the case's light, relative to a white diffuser
 	DarkArea                    // share of it that looks dark, see trace.Seen
 	Contrast                    // likewise
@@ -108,7 +108,7 @@ type Limits struct {
 	GirdleMM         float64        // least thickness of the girdle anywhere
 	MostDepthPercent float64        // greatest depth over width
 	MostCrownPercent float64        // greatest crown height over width
-	LeastCarats      float64        // least weight, see Problem.Rough
+	LeastCarats      float64        // least weight, of the size that fits the rough where there is one
 	LeastYield       float64        // least share of the rough's weight, 0 to 1; needs Problem.Rough
 	LeastFacetMM     float64        // least width of the narrowest facet, girdle aside; UsualFacetMM is usual
 	MainMargin       facets.Angle   // least angle of pavilion facets that reach the lowest point over the critical angle
@@ -132,9 +132,9 @@ type Problem struct {
 	Material  *gems.Material
 	Goal      Goal
 	Limits    Limits
-	Rough     Rough        // what the stone is cut from; nil where its size is fixed
-	Head      facets.Angle // half-angle of the viewer's head
-	Distance  float64      // of the eye, mm, for what is seen; 0 means UsualDistance
+	Rough     *facets.Rough // what the stone is cut from: it is then as large as fits; nil where the pattern fixes its size
+	Head      facets.Angle  // half-angle of the viewer's head
+	Distance  float64       // of the eye, mm, for what is seen; 0 means UsualDistance
 	Seed      uint64
 	Workers   int // 0 for all cores
 }
@@ -142,16 +142,6 @@ type Problem struct {
 // UsualDistance is how far an eye is taken to be from the stone, in mm: one foot, as
 // Harding (1975) took it.
 const UsualDistance = 304.8
-
-// Rough is a piece that the stone is cut from. Where a problem has one, weights are
-// those of the largest stone of the shape that the rough holds.
-type Rough interface {
-	// Scale returns by how much the stone may grow, all dimensions alike, until the
-	// rough holds it no more.
-	Scale(s *facets.Stone) (float64, error)
-	// VolumeMM3 returns the volume of the rough.
-	VolumeMM3() float64
-}
 
 // check refuses a problem that means nothing.
 func (p *Problem) check() error {
@@ -330,7 +320,11 @@ func (p *Problem) purpose() string {
 		cleavage = *l.CleavageNormal
 	}
 	l.MarginIn, l.CleavageNormal = nil, nil
-	fmt.Fprintf(&b, " limits %+v %s %v rough %v", l, margin, cleavage, p.Rough != nil)
+	fmt.Fprintf(&b, " limits %+v %s %v", l, margin, cleavage)
+	if r := p.Rough; r != nil {
+		fmt.Fprintf(&b, " rough %v %v scanned %v less %v avoid %v %v axis %v %v", r.Shape, r.Size, r.Scan != nil, r.Allowance,
+			r.AvoidPlanes, r.AvoidSpheres, r.Axis, r.StoneAxis)
+	}
 	for _, v := range p.Variables {
 		fmt.Fprintf(&b, " %+v", v)
 	}
