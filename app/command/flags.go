@@ -23,6 +23,7 @@ type line struct {
 
 	Look  lookCommand  `cmd:"" help:"Show where the light goes: ledger and maps."`
 	Check checkCommand `cmd:"" help:"Solve and measure the solid, and report every fault."`
+	Tune  tuneCommand  `cmd:"" help:"Search for better angles, show the goal over two angles, tell what a machine's errors cost, or move a plan to another material."`
 	Cut   cutCommand   `cmd:"" help:"Make the sheet for the bench: steps, drawings, sizes, cautions (PDF)."`
 	Gems  gemsCommand  `cmd:"" help:"Print the material table, or all about one material, with sources."`
 }
@@ -112,7 +113,7 @@ func knownCommand(args []string, model *kong.Application) error {
 		return nil
 	}
 	known := strings.Join(names, ", ")
-	if slices.Contains([]string{"tune", "tell"}, args[first]) {
+	if slices.Contains([]string{"tell"}, args[first]) {
 		return commandFaultf("%s does not exist yet; the commands are %s", args[first], known)
 	}
 	if isStoneFile(args[first]) {

@@ -245,9 +245,10 @@ func Choose(p Pattern, names ...string) ([]Variable, error) {
 	return chosen, nil
 }
 
-// Mains returns the names of the tiers, or proportions, that shape the light most: the
-// pavilion tier and the crown tier whose facets together hold most of the stone as seen
-// from above. It returns fewer where there are none.
+// Mains returns what shapes the light most: the pavilion mains, the tiers that reach the
+// stone's lowest point, and the crown mains, those that reach from the table to the
+// girdle; or the largest tier of that side as seen from above where there are none such.
+// Tiers of the same angle are joined by +. It returns fewer where there are none.
 func Mains(p Pattern) []string {
 	if _, ok := p.(ProportionsPattern); ok {
 		return []string{"pavilion", "crown"}
@@ -256,23 +257,55 @@ func Mains(p Pattern) []string {
 	if err != nil {
 		return nil
 	}
+	low, high := math.Inf(1), math.Inf(-1)
+	rim := map[int]bool{} // corners of the girdle
+	for _, f := range stone.Facets {
+		for _, c := range f.Corners {
+			z := stone.Corners[c][2]
+			low, high = min(low, z), max(high, z)
+			if f.Side == facets.Girdle {
+				rim[c] = true
+			}
+		}
+	}
+	near := (high - low) * 1e-6
+	reaches := func(f *facets.Facet, end func(c int) bool) bool { return slices.ContainsFunc(f.Corners, end) }
+	main := map[facets.Side]func(f *facets.Facet) bool{
+		facets.Pavilion: func(f *facets.Facet) bool {
+			return reaches(f, func(c int) bool { return stone.Corners[c][2] < low+near })
+		},
+		facets.Crown: func(f *facets.Facet) bool {
+			return reaches(f, func(c int) bool { return stone.Corners[c][2] > high-near }) && reaches(f, func(c int) bool { return rim[c] })
+		},
+	}
 	var names []string
 	for _, side := range []facets.Side{facets.Pavilion, facets.Crown} {
-		areas := map[string]float64{}
-		best := ""
-		for _, v := range p.Variables() {
-			for _, f := range stone.Facets {
-				if f.Side == side && f.Tier == v.Name {
-					areas[v.Name] += f.Area * math.Abs(f.Normal[2])
-				}
-			}
-			if areas[v.Name] > areas[best] {
-				best = v.Name
+		areas, mains := map[string]float64{}, map[string]bool{}
+		for i := range stone.Facets {
+			if f := &stone.Facets[i]; f.Side == side {
+				areas[f.Tier] += f.Area * math.Abs(f.Normal[2])
+				mains[f.Tier] = mains[f.Tier] || main[side](f)
 			}
 		}
-		if best != "" {
-			names = append(names, best)
+		var best Variable
+		found := false
+		all := p.Variables()
+		for _, v := range all {
+			better := !found || mains[v.Name] && !mains[best.Name] || mains[v.Name] == mains[best.Name] && areas[v.Name] > areas[best.Name]
+			if areas[v.Name] > 0 && v.Unit == "degrees" && better {
+				best, found = v, true
+			}
 		}
+		if !found {
+			continue
+		}
+		joined := best.Name
+		for _, v := range all {
+			if v.Name != best.Name && v.Unit == "degrees" && areas[v.Name] > 0 && v.Now == best.Now && mains[v.Name] == mains[best.Name] {
+				joined += "+" + v.Name
+			}
+		}
+		names = append(names, joined)
 	}
 	return names
 }

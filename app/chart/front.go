@@ -1,0 +1,70 @@
+package chart
+
+import (
+	"math"
+
+	"pavilight/app/drawing"
+	"pavilight/trace/tune"
+)
+
+// FrontChart says what a chart of a trade-off shows beside it.
+type FrontChart struct {
+	Title string
+	Lines []string
+	Aims  [2]string // what the two goals are
+}
+
+// Front draws a trade-off: the stones that no other beats in both goals, with their
+// standard errors, and the plan as it stands.
+func Front(f *tune.Front, o FrontChart) *drawing.Page {
+	width := chartMargin + chartLeft + chartEdge + chartMargin
+	var lines []string
+	for _, l := range o.Lines {
+		lines = append(lines, bodyType.Wrap(l, width-2*chartMargin)...)
+	}
+	top := chartMargin + titleType.Leading() + float64(len(lines))*bodyType.Leading() + 6
+	p := &drawing.Page{Width: width, Height: top + chartEdge + 14 + bodyType.Leading() + chartMargin}
+	y := chartMargin + titleType.Height()
+	p.Write(titleType, black, drawing.Left, drawing.Point{X: chartMargin, Y: y}, titleType.Cut(o.Title, width-2*chartMargin))
+	y += bodyType.Leading() + 1
+	for _, l := range lines {
+		p.Write(bodyType, black, drawing.Left, drawing.Point{X: chartMargin, Y: y}, l)
+		y += bodyType.Leading()
+	}
+	all := f.Points
+	if f.Start.Seen {
+		all = append([]tune.Trial{f.Start}, all...)
+	}
+	b := box{at: drawing.Point{X: chartMargin + chartLeft, Y: top}, edge: chartEdge, x: around(all, 0), y: around(all, 1)}
+	b.axes(p, tune.Variable{Name: o.Aims[0]}, tune.Variable{Name: o.Aims[1]})
+	var line tune.Line
+	for _, t := range f.Points {
+		line = append(line, [2]float64{t.Measures[0], t.Measures[1]})
+	}
+	b.line(p, drawing.Style{Stroke: pale, Width: 0.2}, line)
+	for _, t := range f.Points {
+		x, y := t.Measures[0], t.Measures[1]
+		b.line(p, drawing.Style{Stroke: black, Width: 0.2}, tune.Line{{x - t.MeasureErrors[0], y}, {x + t.MeasureErrors[0], y}})
+		b.line(p, drawing.Style{Stroke: black, Width: 0.2}, tune.Line{{x, y - t.MeasureErrors[1]}, {x, y + t.MeasureErrors[1]}})
+		p.Circle(drawing.Style{Fill: white, Stroke: black, Width: 0.3}, b.place(x, y), 0.9)
+	}
+	if f.Start.Seen {
+		b.cross(p, b.place(f.Start.Measures[0], f.Start.Measures[1]))
+	}
+	p.Write(bodyType, black, drawing.Left, drawing.Point{X: chartMargin, Y: top + chartEdge + 14},
+		"Cross: as it stands. Circles: no other stone seen beats them in both. Bars: standard errors.")
+	return p
+}
+
+// around returns the axis that holds a measure of all trials with a little room.
+func around(all []tune.Trial, aim int) axis {
+	low, high := math.Inf(1), math.Inf(-1)
+	for _, t := range all {
+		low, high = min(low, t.Measures[aim]-t.MeasureErrors[aim]), max(high, t.Measures[aim]+t.MeasureErrors[aim])
+	}
+	if !(low < high) {
+		return axis{low - 0.01, low + 0.01}
+	}
+	room := 0.06 * (high - low)
+	return axis{low - room, high + room}
+}
