@@ -17,6 +17,7 @@ type Path struct {
 	IndexMedium float64
 	Critical    facets.Angle // inside the stone, from the normal; meaningful only if HasCritical
 	HasCritical bool
+	AsIfSingly  bool // the stone refracts doubly; shown is a ray of its ordinary index, polarised as in a stone of that index
 
 	Facet     int          // of the stone, where the ray enters
 	Entry     mgl64.Vec3   // mm
@@ -52,7 +53,8 @@ const (
 // and body colour, until less than 1e-4 of it is left inside or after 500 bounces. x
 // and y run from 0 to 1 across the picture from its top left corner; the
 // wavelength is the settings', the sodium D line for the spectrum. ok is false
-// where the ray passes beside the stone.
+// where the ray passes beside the stone. In a doubly refracting stone a ray parts into
+// ever more; shown is what a stone of its ordinary index does, and the path says so.
 func Follow(scene Scene, column int, settings Settings, x, y float64) (p *Path, ok bool, err error) {
 	if err := settings.check(); err != nil {
 		return nil, false, err
@@ -83,7 +85,7 @@ func Follow(scene Scene, column int, settings Settings, x, y float64) (p *Path, 
 		return nil, false, nil
 	}
 	p = t.path(facet, at, n, m)
-	p.Wavelength = w
+	p.Wavelength, p.AsIfSingly = w, scene.double()
 	return p, true, nil
 }
 

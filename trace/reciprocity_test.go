@@ -203,8 +203,8 @@ func forwardPlanes(b *body) (planes []forwardPlane) {
 // through in a liquid; forgetting n² must be seen.
 func TestReciprocity(t *testing.T) {
 	const source = "reciprocity of light, L/n² being kept; a tracer for tests only that runs forward"
-	// Samples for an error of some 7 % or, in the long form, which takes minutes, 0.5 %.
-	samples, words := 1<<19, ""
+	// Samples for an error of some 10 % or, in the long form, which takes minutes, 0.5 %.
+	samples, words := 1<<18, ""
 	if *long {
 		samples, words = 1<<27, " "+longForm
 	}

@@ -437,3 +437,20 @@ func TestAxisBreaksSymmetry(t *testing.T) {
 		}
 	}
 }
+
+// TestFollowTellsOfDoubleRefraction: a shown path of a stone that refracts doubly must say
+// that it does not.
+func TestFollowTellsOfDoubleRefraction(t *testing.T) {
+	scene := lump(t)
+	scene.Material = uniaxial(t, "zircon", 1.925, 1.984)
+	for _, axis := range []*mgl64.Vec3{nil, {0, 0, 1}} {
+		scene.Axis = axis
+		p, ok, err := Follow(scene, 0, Settings{}, 0.5, 0.5)
+		if err != nil || !ok {
+			t.Fatal(ok, err)
+		}
+		if p.AsIfSingly != (axis != nil) || p.IndexStone != 1.925 {
+			t.Errorf("axis %v: as if singly refracting is %v at index %v, want %v at the ordinary 1.925", axis, p.AsIfSingly, p.IndexStone, axis != nil)
+		}
+	}
+}
