@@ -9,7 +9,7 @@ import (
 	"strings"
 	"time"
 
-	"pavilight/app/drawing"
+	"pavilight/app/disk"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/trace/tune"
@@ -249,7 +249,7 @@ func (k *tuneCommand) probe() error {
 	}
 	f, err := os.CreateTemp(filepath.Dir(k.Write), ".pavilight.*")
 	if err != nil {
-		return disk(k.Write, err)
+		return unwritable(k.Write, err)
 	}
 	f.Close()
 	os.Remove(f.Name())
@@ -261,8 +261,8 @@ func (t *tuning) write(plan *facets.Plan) error {
 	if t.Write == "" || plan == nil {
 		return nil
 	}
-	if err := drawing.WriteFile(t.Write, plan.Write); err != nil {
-		return disk(t.Write, err)
+	if err := disk.Replace(t.Write, plan.Write); err != nil {
+		return ownFault(err)
 	}
 	return nil
 }

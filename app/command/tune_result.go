@@ -12,6 +12,7 @@ import (
 	"time"
 
 	"pavilight/app/chart"
+	"pavilight/app/disk"
 	"pavilight/app/drawing"
 	"pavilight/app/picture"
 	"pavilight/trace/tune"
@@ -360,12 +361,12 @@ func (t *tuning) picture(name string, page *drawing.Page, rows [][]string) error
 	}
 	const dotsPerMM = 8 // about 200 to the inch
 	path := filepath.Join(t.folder.path, name+".png")
-	if err := picture.WritePNG(path, page.Raster(dotsPerMM)); err != nil {
-		return disk(path, err)
+	if err := disk.Replace(path, func(w io.Writer) error { return picture.EncodePNG(w, page.Raster(dotsPerMM)) }); err != nil {
+		return ownFault(err)
 	}
 	table := filepath.Join(t.folder.path, name+".csv")
-	if err := drawing.WriteFile(table, func(w io.Writer) error { return printCSV(w, rows) }); err != nil {
-		return disk(table, err)
+	if err := disk.Replace(table, func(w io.Writer) error { return printCSV(w, rows) }); err != nil {
+		return ownFault(err)
 	}
 	t.folder.written = append(t.folder.written, name+".png", name+".csv")
 	return nil
