@@ -15,6 +15,7 @@ import (
 // checkCommand solves and measures a stone.
 type checkCommand struct {
 	subjectFlags
+	roughFlags
 }
 
 // checkResult is what check prints as JSON.
@@ -29,7 +30,8 @@ type checkResult struct {
 	GirdlePercent        checkSpan    `json:"girdle_percent"`
 	GirdleHeightMM       checkGirdle  `json:"girdle_height_mm"`
 	VolumeMM3            float64      `json:"volume_mm3"`
-	Carats               *float64     `json:"carats"` // null where no density is known
+	Carats               *float64     `json:"carats"`          // null where no density is known
+	Rough                *yield       `json:"rough,omitempty"` // the largest such stone from the rough, where there is one
 }
 
 type checkSpan struct {
@@ -60,10 +62,21 @@ func (k *checkCommand) Run(c call) error {
 		return err
 	}
 	r := newCheckResult(s)
+	if r.Rough, err = k.yield(s); err != nil {
+		return err
+	}
+	if k.Solid != "" {
+		if err := writeSolid(k.Solid, s.stone); err != nil {
+			return err
+		}
+	}
 	if c.json {
 		return printJSON(c.out, r)
 	}
 	printCheck(c.out, s, r)
+	if r.Rough != nil {
+		r.Rough.print(c.out)
+	}
 	return nil
 }
 

@@ -30,6 +30,8 @@ type subject struct {
 	stone    *facets.Stone
 	material *gems.Material // nil where nothing says what the stone is made of
 	measures facets.Measures
+	rough    *facets.RoughRef // nil where the plan names none
+	folder   string           // of the plan, where the files it names lie
 }
 
 // subject finds, solves and measures the stone.
@@ -161,7 +163,7 @@ func (f *subjectFlags) planned(c call, plan *facets.Plan) (*subject, error) {
 	for _, gap := range solution.Gaps {
 		c.warn("%s", gapWords(gap))
 	}
-	return &subject{name: plan.Name, stone: solution.Stone, material: material}, nil
+	return &subject{name: plan.Name, stone: solution.Stone, material: material, rough: plan.Rough, folder: filepath.Dir(plan.File)}, nil
 }
 
 // materialOf returns what the flag, or else the plan, says that the stone is made of.
