@@ -15,16 +15,17 @@ func TestCheckFitsIntoRough(t *testing.T) {
 	if bare.Rough != nil {
 		t.Errorf("a yield without rough: %+v", bare.Rough)
 	}
-	// A cylinder just as wide as the round, and long: the width decides.
-	r := decoded[checkResult](t, "check", "--rough", "cylinder:10x30", "--allowance", "0")
+	// A cylinder a little longer than the round is deep: the width decides. (In a long one
+	// the stone lies on its side and is larger.)
+	r := decoded[checkResult](t, "check", "--rough", "cylinder:10x7", "--allowance", "0")
 	if y := r.Rough; y == nil || math.Abs(y.WidthMM-10) > 0.15 || y.WidthMM < 10-1e-3 {
 		t.Errorf("the width from a cylinder of 10 mm: %+v", y) // tilted a little it may be a trifle wider
 	}
-	with := decoded[checkResult](t, "check", "--rough", "cylinder:10x30")
+	with := decoded[checkResult](t, "check", "--rough", "cylinder:10x7")
 	if got, want := with.Rough.WidthMM/r.Rough.WidthMM, 0.94; math.Abs(got-want) > 1e-2 {
 		t.Errorf("0.3 mm all round of 10 mm leaves %v, want %v", got, want)
 	}
-	if share := r.Rough.Share; math.Abs(share-*r.Rough.Carats/(math.Pi*25*30*4.0/200)) > 1e-3 {
+	if share := r.Rough.Share; math.Abs(share-*r.Rough.Carats/(math.Pi*25*7*4.0/200)) > 1e-3 {
 		t.Errorf("yield %v against weights", share)
 	}
 	plan := file(t, "own.toml", strings.Replace(bundledText(t), "gear = 96\n", "gear = 96\nrough = { shape = \"box\", size_mm = [20, 20, 20] }\n", 1))
