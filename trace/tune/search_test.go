@@ -150,3 +150,29 @@ func TestFineSweep(t *testing.T) {
 		}
 	}
 }
+
+// The search improves sample plans of four outlines by more than the joint error of
+// start and best allows for chance, over the one angle that matters most.
+func TestImprovesSamplePlans(t *testing.T) {
+	for _, test := range []struct{ name, material string }{
+		{"round.toml", "corundum"}, {"oval.toml", "spessartine"}, {"step.toml", "beryl"}, {"triangle.toml", "spinel"},
+	} {
+		plan := samplePlan(t, test.name)
+		main := Mains(PlanPattern{plan})[0]
+		vs, err := Choose(PlanPattern{plan}, main)
+		if err != nil {
+			t.Fatal(err)
+		}
+		vs[0].Low, vs[0].High, vs[0].Step = vs[0].Now-3, vs[0].Now+1.5, 0.5
+		o, err := Search(context.Background(), &Problem{
+			Pattern: PlanPattern{plan}, Variables: vs, Material: material(t, test.material), Goal: inAir(t), Head: 10 * facets.Degree, Seed: 1,
+		}, nil, nil)
+		if err != nil {
+			t.Errorf("%s: %v", test.name, err)
+			continue
+		}
+		if !o.Better || o.Gain < 4*o.GainError {
+			t.Errorf("%s, %s: %.4f ± %.4f from %v to %v", test.name, main, o.Gain, o.GainError, o.Start.Values, o.Best.Values)
+		}
+	}
+}
