@@ -155,7 +155,7 @@ func TestFineSweep(t *testing.T) {
 // start and best allows for chance, over the one angle that matters most.
 func TestImprovesSamplePlans(t *testing.T) {
 	for _, test := range []struct{ name, material string }{
-		{"round.toml", "corundum"}, {"oval.toml", "spessartine"}, {"step.toml", "beryl"}, {"triangle.toml", "spinel"},
+		{"round.toml", "corundum"}, {"cushion.toml", "chrysoberyl"}, {"step.toml", "beryl"}, {"triangle.toml", "spinel"},
 	} {
 		plan := samplePlan(t, test.name)
 		main := Mains(PlanPattern{plan})[0]
