@@ -312,6 +312,11 @@ func (t *tuning) printOutcome(o *tune.Outcome) {
 	default:
 		fmt.Fprintln(w, "Nothing better was found than the stone as it stands.")
 	}
+	for i, v := range t.problem.Variables {
+		if x := o.Best.Values[i]; v.High > v.Low && (x < v.Low+v.Step*0.999 || x > v.High-v.Step*0.999) {
+			fmt.Fprintf(w, "%s stands at its limit, %g to %g: wider ones, by --vary %s=LOW..HIGH, may do better.\n", v.Name, v.Low, v.High, v.Name)
+		}
+	}
 	t.printNearby(w, o)
 	fmt.Fprintf(w, "%d stones looked at; both shown are traced anew, with points that the search never used.\n", o.Tried)
 	if t.Write != "" {

@@ -1,0 +1,150 @@
+package tune
+
+import (
+	"context"
+	"errors"
+	"math"
+	"os"
+	"os/exec"
+	"path/filepath"
+	"strings"
+	"testing"
+	"time"
+)
+
+// keptJudge returns a judge of a plain function with a memory.
+func keptJudge(t testing.TB, path string, slow time.Duration) (*judge, *Memory) {
+	t.Helper()
+	j := plainJudge(span(2, -2, 2, 0), 0.001, func(x []float64) float64 {
+		time.Sleep(slow)
+		return math.Hypot(x[0]-1, x[1]+0.5) / 5
+	})
+	j.Material = material(t, "quartz")
+	m := &Memory{Path: path, Purpose: "a plan"}
+	if err := m.open(j); err != nil {
+		t.Fatal(err)
+	}
+	return j, m
+}
+
+// killedFile names, in the environment of a process that is to be killed, its memory.
+const killedFile = "PAVILIGHT_TEST_MEMORY"
+
+// A process that is killed outright, in the middle of a line or not, leaves a memory from
+// which the search ends where one that was not killed ends.
+func TestKilled(t *testing.T) {
+	if path := os.Getenv(killedFile); path != "" { // the process to be killed
+		j, _ := keptJudge(t, path, time.Millisecond)
+		search(context.Background(), j, nil)
+		return
+	}
+	j := plainJudge(span(2, -2, 2, 0), 0.001, func(x []float64) float64 { return math.Hypot(x[0]-1, x[1]+0.5) / 5 })
+	want, err := search(context.Background(), j, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	path := filepath.Join(t.TempDir(), "seen")
+	lines := func() int {
+		text, _ := os.ReadFile(path)
+		return strings.Count(string(text), "\n")
+	}
+	for round := range 2 {
+		before := lines()
+		victim := exec.Command(os.Args[0], "-test.run", "^TestKilled$")
+		victim.Env = append(os.Environ(), killedFile+"="+path)
+		if err := victim.Start(); err != nil {
+			t.Fatal(err)
+		}
+		for deadline := time.Now().Add(20 * time.Second); lines() < before+50; time.Sleep(2 * time.Millisecond) {
+			if time.Now().After(deadline) {
+				victim.Process.Kill()
+				t.Fatal("the other process writes nothing")
+			}
+		}
+		if err := victim.Process.Kill(); err != nil {
+			t.Fatal(err)
+		}
+		if err := victim.Wait(); err == nil {
+			t.Fatal("it ended before it was killed")
+		}
+		if round == 1 { // as when the machine stops in the middle of a write
+			text, _ := os.ReadFile(path)
+			if err := os.WriteFile(path, text[:len(text)-7], 0o644); err != nil {
+				t.Fatal(err)
+			}
+		}
+	}
+	j, m := keptJudge(t, path, 0)
+	kept := len(j.known)
+	if kept < 90 {
+		t.Errorf("%d stones are remembered", kept)
+	}
+	got, err := search(context.Background(), j, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := m.Close(); err != nil {
+		t.Fatal(err)
+	}
+	if got.Best.Score != want.Best.Score || got.Gain != want.Gain || got.Tried != want.Tried {
+		t.Errorf("resumed to %+v, want %+v", got.Best, want.Best)
+	}
+	// And a run that ended is read back whole.
+	j, m = keptJudge(t, path, 0)
+	defer m.Close()
+	j.observe = func(context.Context, []float64, effort) (sight, error) { return sight{}, errors.New("asked anew") }
+	if again, err := search(context.Background(), j, nil); err != nil || again.Best.Score != want.Best.Score {
+		t.Errorf("reopened: %v", err)
+	}
+}
+
+// Files that hold something else are left alone, with words.
+func TestMemoryFaults(t *testing.T) {
+	folder := t.TempDir()
+	write := func(name, text string) string {
+		path := filepath.Join(folder, name)
+		if err := os.WriteFile(path, []byte(text), 0o644); err != nil {
+			t.Fatal(err)
+		}
+		return path
+	}
+	good := filepath.Join(folder, "good")
+	_, m := keptJudge(t, good, 0)
+	m.Close()
+	text, err := os.ReadFile(good)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for name, test := range map[string]struct{ path, purpose, words string }{
+		"somebody's notes":     {write("notes", "dear diary\nmore\n"), "a plan", "nothing that tuning saw"},
+		"notes without an end": {write("short", "dear diary"), "a plan", "nothing that tuning saw"},
+		"another plan":         {good, "another plan", "another plan, goal or set of limits"},
+		"a folder":             {folder, "a plan", folder},
+		"no such folder":       {filepath.Join(folder, "a", "b"), "a plan", "no such file"},
+	} {
+		j := plainJudge(span(2, -2, 2, 0), 0, func([]float64) float64 { return 0 })
+		j.Material = material(t, "quartz")
+		m := &Memory{Path: test.path, Purpose: test.purpose}
+		err := m.open(j)
+		var fault *MemoryError
+		if !errors.As(err, &fault) || !strings.Contains(err.Error(), test.words) {
+			t.Errorf("%s: %v", name, err)
+		}
+		m.Close()
+	}
+	for path, want := range map[string]string{"notes": "dear diary\nmore\n", "short": "dear diary", "good": string(text)} {
+		if got, _ := os.ReadFile(filepath.Join(folder, path)); string(got) != want {
+			t.Errorf("%s became %q", path, got)
+		}
+	}
+	// Garbage after whole lines is cut off, and asked again.
+	garbage := write("garbage", string(text)+`{"key":"1 2 12000 0 16 1 false","values":[[0.5]],"errors":[[0.1]]}`+"\n\x00\x00\x00\n")
+	j, m := keptJudge(t, garbage, 0)
+	m.Close()
+	if len(j.known) != 1 {
+		t.Errorf("%d stones are remembered before the garbage, want 1", len(j.known))
+	}
+	if left, _ := os.ReadFile(garbage); strings.Contains(string(left), "\x00") {
+		t.Error("the garbage is still there")
+	}
+}
