@@ -48,7 +48,7 @@ func (l *tierList) rows(plan *facets.Plan, stone *facets.Stone, ticks []Tick) []
 		if !t.HasAngle {
 			row.Angle = foundAngle(stone, t.Name)
 		}
-		row.Slides = row.Own && (t.Side == facets.Pavilion || t.Side == facets.Crown) && t.Stop.Rule != facets.StopCulet
+		row.Slides = row.Own && t.Angle > 0 && (t.Side == facets.Pavilion || t.Side == facets.Crown)
 		if row.Slides {
 			var marks []Tick
 			if t.Side == facets.Pavilion {

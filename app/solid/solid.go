@@ -8,9 +8,11 @@
 package solid
 
 import (
+	"cmp"
 	"image"
 	"image/color"
 	"math"
+	"slices"
 
 	"github.com/go-gl/mathgl/mgl64"
 
@@ -187,8 +189,10 @@ type Label struct {
 }
 
 // Labels names each tier once, on the facet of it that shows most area, largest
-// first, and leaves out those whose facets show less than least square pixels.
-func (d *Drawing) Labels(least float64) []Label {
+// first. It leaves out those whose facets show less than least square pixels, and
+// those whose name would lie on another's: closer than wide and high, in pixels. The
+// tier called first comes first, however small.
+func (d *Drawing) Labels(least, wide, high float64, first string) []Label {
 	type shown struct {
 		Label
 		area float64
@@ -201,7 +205,7 @@ func (d *Drawing) Labels(least float64) []Label {
 			continue
 		}
 		area, x, y := d.centroid(i)
-		if area < least {
+		if area < least && f.Tier != first {
 			continue
 		}
 		k, seen := at[f.Tier]
@@ -212,9 +216,20 @@ func (d *Drawing) Labels(least float64) []Label {
 			found[k] = shown{Label{f.Tier, x, y}, area}
 		}
 	}
-	labels := make([]Label, len(found))
-	for i, s := range found {
-		labels[i] = s.Label
+	slices.SortStableFunc(found, func(a, b shown) int {
+		if (a.Tier == first) != (b.Tier == first) {
+			return map[bool]int{true: -1, false: 1}[a.Tier == first]
+		}
+		return cmp.Compare(b.area, a.area)
+	})
+	var labels []Label
+	for _, s := range found {
+		clear := !slices.ContainsFunc(labels, func(l Label) bool {
+			return math.Abs(l.X-s.X) < wide && math.Abs(l.Y-s.Y) < high
+		})
+		if clear {
+			labels = append(labels, s.Label)
+		}
 	}
 	return labels
 }

@@ -143,9 +143,10 @@ func TestPaintCoversOutline(t *testing.T) {
 }
 
 func TestLabelsNameEachTierSeenOnce(t *testing.T) {
-	labels := Project(box(), FaceUp().Turned(0.4, 0.4), 200, 200, share).Labels(4)
-	if len(labels) != 3 {
-		t.Fatalf("%d labels %v, want the three faces seen", len(labels), labels)
+	d := Project(box(), FaceUp().Turned(0.4, 0.4), 200, 200, share)
+	labels := d.Labels(4, 1, 1, "")
+	if len(labels) != 3 || labels[0].Tier != "+z" {
+		t.Fatalf("labels %v, want the three faces seen, the largest first", labels)
 	}
 	seen := map[string]bool{}
 	for _, l := range labels {
@@ -153,6 +154,12 @@ func TestLabelsNameEachTierSeenOnce(t *testing.T) {
 			t.Errorf("tier %s labelled twice", l.Tier)
 		}
 		seen[l.Tier] = true
+	}
+	if crowded := d.Labels(4, 1000, 1000, labels[2].Tier); len(crowded) != 1 || crowded[0] != labels[2] {
+		t.Errorf("where there is room for one label, %v, want that of the tier called first", crowded)
+	}
+	if none := d.Labels(1e9, 1, 1, ""); len(none) != 0 {
+		t.Errorf("facets too small for a name are named: %v", none)
 	}
 }
 

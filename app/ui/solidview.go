@@ -117,8 +117,9 @@ func (s *solidView) redraw() {
 	} else {
 		s.drawing = solid.Project(s.stone, s.pose, width, height, alone)
 		s.drawing.Paint(dst, style)
-		const least = 150 // square units of a facet that takes a name
-		s.labels = s.drawing.Labels(float64(least * s.scale * s.scale))
+		const least, wide, high = 150, 26, 15 // square units of a facet that takes a name; of the name
+		unit := float64(s.scale)
+		s.labels = s.drawing.Labels(least*unit*unit, wide*unit, high*unit, s.selected)
 	}
 	s.Refresh()
 }

@@ -68,6 +68,7 @@ type window struct {
 	keeper  keeper
 	closed  bool
 	ledgers throttle
+	told    *model.Frame // whose numbers the ledger shows
 	stages  map[string]bool
 	dialogs []dialog.Dialog           // that are open, the top one last
 	asked   map[string]*widget.Button // answers of the question that is open, by their label
@@ -328,8 +329,12 @@ func (w *window) onLook(c model.Change) {
 		w.refreshStone()
 	case model.MapsChanged:
 		w.grid.refreshMaps()
-		final := w.bench.Look.Frame != nil && w.bench.Look.Frame.Final
-		if w.ledgers.due(final) {
+		f := w.bench.Look.Frame
+		final := f != nil && f.Final
+		// Numbers never stand beside maps of another stone or view.
+		other := f != nil && (w.told == nil || w.told.Subject != f.Subject || w.told.Settings != f.Settings)
+		if w.ledgers.due(final || other) {
+			w.told = f
 			w.grid.refreshHeadings()
 			w.grid.refreshLedger()
 			w.refreshFrom()
