@@ -1,0 +1,505 @@
+package model
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"image"
+	"math"
+	"runtime"
+	"strconv"
+	"strings"
+	"sync/atomic"
+	"time"
+
+	"pavilight/app/chart"
+	"pavilight/app/picture"
+	"pavilight/facets"
+	"pavilight/gems"
+	"pavilight/trace"
+	"pavilight/trace/tune"
+)
+
+// TuneTask is a question that the room for tuning asks.
+type TuneTask int
+
+// The questions.
+const (
+	FindBetter   TuneTask = iota // one better stone
+	ShowField                    // the goal over the two things that vary
+	TellErrors                   // what a machine's errors cost
+	TradeTwo                     // the trade-off between two goals
+	MoveMaterial                 // the plan in another material
+)
+
+// TuneTasks returns all questions in the order in which they are offered.
+func TuneTasks() []TuneTask {
+	return []TuneTask{FindBetter, ShowField, TellErrors, TradeTwo, MoveMaterial}
+}
+
+// String returns the question's name on the screen.
+func (t TuneTask) String() string {
+	return [...]string{"Find better angles", "Show the goal over two", "What errors cost", "Trade two goals off", "Another material"}[t]
+}
+
+// TuneChoice is one thing that may vary, and whether it shall.
+type TuneChoice struct {
+	tune.Variable
+	Chosen bool
+}
+
+// Tune is the state behind the room in which a plan is tuned: what may vary, what the
+// stone is to be good at, and what was found. Its methods run on the window's goroutine;
+// a run's answers come back through do. A change of plan or question ends the run under
+// way; what was found stays until the next run begins.
+type Tune struct {
+	Task     TuneTask
+	Choices  []TuneChoice
+	Aims     []tune.Aim
+	Limits   tune.Limits
+	Tilts    []facets.Angle
+	Worst    bool
+	Step     float64 // degrees
+	Machine  tune.Machine
+	Draws    int            // of TellErrors
+	To       *gems.Material // of MoveMaterial
+	KeepFile string         // remembers what was seen; empty for none
+
+	Running bool
+	Stopped bool   // the run was stopped before its end
+	Phase   string // what the run is doing, in words
+	Done    float64
+	Trouble error // why there is no answer; nil if there is one
+
+	Start, Best   *tune.Trial // so far; nil before the first
+	StartPicture  *image.RGBA // light return as the stone stands; nil before it is traced
+	BestPicture   *image.RGBA // light return of the best so far
+	Outcome       *tune.Outcome
+	Field         *tune.Field
+	Tolerance     *tune.Tolerance
+	Front         *tune.Front
+	Moved         *tune.Moved
+	variablesUsed []tune.Variable // by the answer shown
+
+	do       func(func())
+	onChange func()
+	plan     *facets.Plan
+	material *gems.Material
+	around   []Around
+	head     facets.Angle
+	number   int // of the run that counts
+	cancel   context.CancelFunc
+	finished chan struct{}
+}
+
+// NewTune returns the state before a plan was opened: light return, face-up, the usual
+// machine. do hands work to the window's goroutine, in order, without waiting for it;
+// onChange is called there after every change.
+func NewTune(do func(func()), onChange func()) *Tune {
+	return &Tune{
+		Aims: []tune.Aim{{Measure: tune.LightReturn, Weight: 1}}, Tilts: []facets.Angle{0},
+		Limits: tune.Limits{LeastFacetMM: tune.UsualFacetMM, KeepRatio: 0.01},
+		Step:   0.1, Machine: tune.UsualMachine(), Draws: 1000, do: do, onChange: onChange,
+	}
+}
+
+// SetPlan takes another state of the plan. Choices and limits of tiers that are still
+// there stay as they were; the first plan has its mains chosen.
+func (t *Tune) SetPlan(plan *facets.Plan, material *gems.Material, around []Around, head facets.Angle) {
+	t.Stop()
+	before := t.Choices
+	t.plan, t.material, t.around, t.head = plan, material, around, head
+	pattern := tune.PlanPattern{Plan: plan}
+	t.Choices = nil
+	for _, v := range pattern.Variables() {
+		c := TuneChoice{Variable: v}
+		for _, old := range before {
+			if old.Name == v.Name {
+				c.Chosen, c.Low, c.High = old.Chosen, old.Low, old.High
+			}
+		}
+		t.Choices = append(t.Choices, c)
+	}
+	if len(before) == 0 {
+		for _, name := range strings.Split(strings.Join(tune.Mains(pattern), "+"), "+") {
+			for i := range t.Choices {
+				t.Choices[i].Chosen = t.Choices[i].Chosen || t.Choices[i].Name == name
+			}
+		}
+	}
+	t.onChange()
+}
+
+// Choose has a variable vary, or not.
+func (t *Tune) Choose(i int, chosen bool) {
+	t.Choices[i].Chosen = chosen
+	t.onChange()
+}
+
+// SetLimits sets how far a variable may go. It fails in words where that means nothing.
+func (t *Tune) SetLimits(i int, low, high float64) error {
+	v := t.Choices[i].Variable
+	least, most := tune.Widest(tune.PlanPattern{Plan: t.plan}, v)
+	if !(low >= least && high <= most && low <= high) {
+		return fmt.Errorf("%s: use limits from %g to %g %s, the smaller first", v.Name, least, most, v.Unit)
+	}
+	t.Choices[i].Low, t.Choices[i].High = low, high
+	t.onChange()
+	return nil
+}
+
+// variables returns what shall vary, of a plan that may be another than the one open.
+func (t *Tune) variables(p tune.Pattern) ([]tune.Variable, error) {
+	var names []string
+	for _, c := range t.Choices {
+		if c.Chosen {
+			names = append(names, c.Name)
+		}
+	}
+	if len(names) == 0 {
+		return nil, errors.New("nothing is chosen that may vary; choose at least one tier")
+	}
+	vs, err := tune.Choose(p, names...)
+	for i := range vs {
+		for _, c := range t.Choices {
+			if c.Name == vs[i].Name {
+				vs[i].Low, vs[i].High = c.Low, c.High
+			}
+		}
+		if vs[i].Unit == "degrees" {
+			vs[i].Step = t.Step
+		}
+	}
+	return vs, err
+}
+
+// problem returns the question that the room asks.
+func (t *Tune) problem() (*tune.Problem, error) {
+	if t.plan == nil || t.material == nil {
+		return nil, errors.New("open a plan that says what it is made of")
+	}
+	p := &tune.Problem{Pattern: tune.PlanPattern{Plan: t.plan}, Material: t.material, Limits: t.Limits, Head: t.head, Seed: 1,
+		Workers: max(1, runtime.GOMAXPROCS(0)-1)} // the window stays alive
+	p.Goal = tune.Goal{Aims: t.Aims, Worst: t.Worst}
+	for _, s := range surroundings(t.around) {
+		for _, tilt := range t.Tilts {
+			p.Goal.Cases = append(p.Goal.Cases, tune.Case{Surrounding: s, View: trace.View{Tilt: tilt}})
+		}
+	}
+	var err error
+	p.Variables, err = t.variables(p.Pattern)
+	return p, err
+}
+
+// Begin starts a run of the task. Trouble says in words why it cannot.
+func (t *Tune) Begin() {
+	t.Stop()
+	t.Trouble, t.Stopped, t.Start, t.Best, t.StartPicture, t.BestPicture = nil, false, nil, nil, nil, nil
+	t.Outcome, t.Field, t.Tolerance, t.Front, t.Moved = nil, nil, nil, nil, nil
+	p, err := t.problem()
+	if err == nil && t.Task == ShowField && len(p.Variables) != 2 {
+		err = fmt.Errorf("a field lies over two things that vary, and %d are chosen", len(p.Variables))
+	}
+	if err == nil && t.Task == MoveMaterial && t.To == nil {
+		err = errors.New("choose the material to move to")
+	}
+	if err != nil {
+		t.Trouble = err
+		t.onChange()
+		return
+	}
+	ctx, cancel := context.WithCancel(context.Background())
+	t.number++
+	t.variablesUsed = p.Variables
+	t.Running, t.Phase, t.Done, t.cancel, t.finished = true, "beginning", 0, cancel, make(chan struct{})
+	r := &tuneRun{tune: t, number: t.number, problem: p, task: t.Task, to: t.To, machine: t.Machine, draws: t.Draws, keep: t.KeepFile,
+		plan: t.plan, choose: t.frozen(), pace: newPace()}
+	finished := t.finished
+	go func() {
+		defer close(finished)
+		defer cancel()
+		err := r.work(ctx)
+		t.do(func() { t.ended(r.number, err, ctx.Err() != nil) })
+	}()
+	t.onChange()
+}
+
+// frozen returns what shall vary as it is chosen now: a run must not see later choices.
+func (t *Tune) frozen() func(tune.Pattern) ([]tune.Variable, error) {
+	choices := append([]TuneChoice(nil), t.Choices...)
+	f := &Tune{Choices: choices, Step: t.Step}
+	return f.variables
+}
+
+// Stop ends the run under way and keeps what it found. It does not wait; see Wait.
+func (t *Tune) Stop() {
+	if t.cancel != nil {
+		t.cancel()
+	}
+}
+
+// Wait returns when the goroutine of the last run has ended. It must not be called on
+// the window's goroutine where do waits for that.
+func (t *Tune) Wait() {
+	if t.finished != nil {
+		<-t.finished
+	}
+}
+
+func (t *Tune) ended(number int, err error, cancelled bool) {
+	if number != t.number {
+		return
+	}
+	t.Running, t.cancel = false, nil
+	if t.Stopped = cancelled; !cancelled {
+		t.Trouble = err
+		t.Done = 1
+	}
+	t.onChange()
+}
+
+// Kept returns the plan as the best so far has it, false before there is one that fits.
+func (t *Tune) Kept() (*facets.Plan, bool) {
+	if t.Moved != nil && t.Moved.FoundPlan != nil {
+		plan := t.Moved.FoundPlan.Clone()
+		plan.Material = facets.MaterialRef{Key: t.Moved.To.Key}
+		return plan, true
+	}
+	if t.Best == nil || !t.Best.Fit {
+		return nil, false
+	}
+	return t.planOf(t.Best), true
+}
+
+// Picked returns the plan of a point of the front.
+func (t *Tune) Picked(point int) *facets.Plan { return t.planOf(&t.Front.Points[point]) }
+
+func (t *Tune) planOf(trial *tune.Trial) *facets.Plan {
+	names := make([]string, len(t.variablesUsed))
+	for i, v := range t.variablesUsed {
+		names[i] = v.Name
+	}
+	return tune.PlanPattern{Plan: t.plan}.With(names, trial.Values)
+}
+
+// Changes tells a cutter what the best so far changes, a line a tier.
+func (t *Tune) Changes() []string {
+	if t.Best == nil {
+		return nil
+	}
+	var lines []string
+	for i, v := range t.variablesUsed {
+		number := func(x float64) string { return strconv.FormatFloat(x, 'f', 3, 64) }
+		if v.Unit == "degrees" {
+			number = func(x float64) string { return strconv.FormatFloat(x, 'f', 2, 64) + "°" }
+		}
+		by := t.Best.Values[i] - v.Now
+		words := "as it is"
+		switch {
+		case math.Abs(by) < 5e-4:
+		case v.Unit == "degrees" && by > 0:
+			words = number(by) + " steeper"
+		case v.Unit == "degrees":
+			words = number(-by) + " flatter"
+		default:
+			words = fmt.Sprintf("%+.3f", by)
+		}
+		lines = append(lines, fmt.Sprintf("%s  %s → %s  %s", v.Name, number(v.Now), number(t.Best.Values[i]), words))
+	}
+	return lines
+}
+
+// FieldPicture draws the field so far as a picture with so many pixels to the millimetre,
+// nil before there is one.
+func (t *Tune) FieldPicture(perMM float64) *image.RGBA {
+	if t.Field == nil {
+		return nil
+	}
+	return chart.Field(t.Field, chart.FieldChart{Title: t.plan.Name, Goal: "goal"}).Raster(perMM)
+}
+
+// tuneRun is one run; it belongs to its own goroutine.
+type tuneRun struct {
+	tune    *Tune
+	number  int
+	problem *tune.Problem
+	task    TuneTask
+	to      *gems.Material
+	machine tune.Machine
+	draws   int
+	keep    string
+	plan    *facets.Plan
+	choose  func(tune.Pattern) ([]tune.Variable, error)
+	pace    *pace
+	wanted  atomic.Pointer[tune.Trial] // to be painted
+}
+
+// hand gives the window's goroutine something to take, unless another run counts by then.
+func (r *tuneRun) hand(take func(t *Tune)) {
+	t := r.tune
+	t.do(func() {
+		if r.number == t.number {
+			take(t)
+			t.onChange()
+		}
+	})
+}
+
+// progress hands over how far a search has come, a few times a second.
+func (r *tuneRun) progress(p tune.Progress) {
+	if len(p.Best.Values) > 0 {
+		best := p.Best
+		r.wanted.Store(&best)
+	}
+	if !r.pace.due(time.Now()) {
+		return
+	}
+	r.hand(func(t *Tune) {
+		t.Phase, t.Done = p.Phase, p.Done
+		if len(p.Start.Values) > 0 {
+			t.Start = &p.Start
+		}
+		if len(p.Best.Values) > 0 {
+			t.Best = &p.Best
+		}
+	})
+}
+
+func (r *tuneRun) share(done float64) {
+	if r.pace.due(time.Now()) {
+		r.hand(func(t *Tune) { t.Done = done })
+	}
+}
+
+// work does the task.
+func (r *tuneRun) work(ctx context.Context) error {
+	var memory *tune.Memory
+	if r.keep != "" {
+		var text strings.Builder
+		r.plan.Write(&text) // a builder takes all
+		memory = &tune.Memory{Path: r.keep, Purpose: text.String()}
+		defer memory.Close()
+	}
+	switch r.task {
+	case ShowField:
+		f, err := tune.Sweep(ctx, r.problem, tune.FieldSettings{}, memory, func(f *tune.Field) {
+			if r.pace.due(time.Now()) {
+				r.hand(func(t *Tune) { t.Field, t.Done = f, f.Done })
+			}
+		})
+		if f != nil {
+			r.hand(func(t *Tune) {
+				t.Field = f
+				if best, ok := f.Best(); ok {
+					t.Start, t.Best = &f.Now, &f.Trials[best]
+				}
+			})
+		}
+		return err
+	case TellErrors:
+		o, err := tune.Tolerate(ctx, &tune.ToleranceProblem{Plan: r.plan, Material: r.problem.Material, Case: r.problem.Goal.Cases[0],
+			Head: r.problem.Head, Machine: r.machine, Draws: r.draws, Seed: 1, Workers: r.problem.Workers}, r.share)
+		if o != nil {
+			r.hand(func(t *Tune) { t.Tolerance = o })
+		}
+		return err
+	case TradeTwo:
+		f, err := tune.TradeOff(ctx, r.problem, memory, r.progress)
+		if f != nil {
+			r.hand(func(t *Tune) { t.Front = f })
+		}
+		return err
+	case MoveMaterial:
+		refs, err := tune.UsualReferences(r.problem.Material, r.to)
+		if err != nil {
+			return err
+		}
+		media := []*gems.Material{}
+		for _, c := range r.problem.Goal.Cases {
+			media = append(media, c.Surrounding.Medium)
+		}
+		m, err := tune.Move(ctx, r.problem, r.to, refs, r.choose, media, memory, r.progress)
+		if m != nil {
+			r.hand(func(t *Tune) { t.Moved, t.Outcome = m, m.Outcome })
+		}
+		return err
+	}
+	return r.search(ctx, memory)
+}
+
+// search looks for the best stone and paints the best so far beside the start.
+func (r *tuneRun) search(ctx context.Context, memory *tune.Memory) error {
+	searching, done := context.WithCancel(ctx)
+	painted := make(chan struct{})
+	go func() {
+		defer close(painted)
+		r.paintBest(searching)
+	}()
+	o, err := tune.Search(ctx, r.problem, memory, r.progress)
+	done()
+	<-painted
+	if o != nil {
+		last := r.picture(context.WithoutCancel(ctx), &o.Best)
+		r.hand(func(t *Tune) {
+			t.Outcome, t.Start, t.Best = o, &o.Start, &o.Best
+			if last != nil {
+				t.BestPicture = last
+			}
+		})
+	}
+	return err
+}
+
+// paintBest paints the start, and then every now and then the best so far.
+func (r *tuneRun) paintBest(ctx context.Context) {
+	start := r.picture(ctx, nil)
+	r.hand(func(t *Tune) { t.StartPicture = start })
+	const rest = 500 * time.Millisecond // painting takes time from the search
+	var shown *tune.Trial
+	for {
+		select {
+		case <-ctx.Done():
+			return
+		case <-time.After(rest):
+		}
+		best := r.wanted.Load()
+		if best == nil || best == shown || !best.Fit {
+			continue
+		}
+		shown = best
+		if img := r.picture(ctx, best); img != nil {
+			r.hand(func(t *Tune) { t.BestPicture = img })
+		}
+	}
+}
+
+// tunePixels is the edge of the two pictures.
+const tunePixels = 160
+
+// picture paints the light return of a trial, of the plan as it stands for nil; nil if it
+// cannot be had.
+func (r *tuneRun) picture(ctx context.Context, trial *tune.Trial) *image.RGBA {
+	var names []string
+	var values []float64
+	if trial != nil {
+		for _, v := range r.problem.Variables {
+			names = append(names, v.Name)
+		}
+		values = trial.Values
+	}
+	stone, err := r.problem.Pattern.Build(names, values)
+	if err != nil {
+		return nil
+	}
+	first := r.problem.Goal.Cases[0]
+	result, err := trace.Run(ctx, trace.Scene{Stone: stone, Material: r.problem.Material, Surroundings: []trace.Surrounding{first.Surrounding}},
+		trace.Settings{View: first.View, Head: r.problem.Head, Pixels: tunePixels, Samples: 8, Seed: r.problem.Seed, Workers: 1}, nil)
+	if err != nil {
+		return nil
+	}
+	img := image.NewRGBA(image.Rect(0, 0, tunePixels, tunePixels))
+	field := result.Columns[0].Map.Field(trace.Returned)
+	picture.Paint(img, field, tunePixels, picture.Cividis())
+	clearOutside(img, field)
+	return img
+}
