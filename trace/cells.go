@@ -39,12 +39,16 @@ func newCells(n int) cells {
 type region struct {
 	u, v, step float64
 	side       int
-	cell       func(column, row int) int      // the number of one of its cells
-	outside    func(u, v, size float64) bool  // whether a part of it is not wanted; nil if all is
-	margin     float64                        // by how much a function must be larger to count as larger
-	stack      []uint16                       // lists of the quarters being worked on
-	survivors  []struct{ at, du, dv float64 } // scratch: functions at a quarter's corner, and their rises
+	cell       func(column, row int) int     // the number of one of its cells
+	outside    func(u, v, size float64) bool // whether a part of it is not wanted; nil if all is
+	margin     float64                       // by how much a function must be larger to count as larger
+	stack      []uint16                      // lists of the quarters being worked on
+	survivors  []rise                        // scratch
 }
+
+// rise is a function over a square: its value at the first corner, and how much it rises
+// to the next along u and v.
+type rise struct{ at, du, dv float64 }
 
 // fill names, for each cell of the square, the functions that can be largest. The
 // square is quartered from the whole list down: a function is dropped where another
@@ -96,29 +100,32 @@ func (c *cells) quarter(fs []plane2, sq *region, list []uint16, column, row, n i
 func appendLargest(to []uint16, fs []plane2, list []uint16, sq *region, u, v, w float64) []uint16 {
 	// One that nowhere reaches what another has everywhere is out: a cheap first sieve.
 	floor := math.Inf(-1)
+	sq.survivors = sq.survivors[:0]
 	for _, j := range list {
 		f := &fs[j]
-		floor = max(floor, f.at(u, v)+min(0, f.b*w)+min(0, f.c*w))
+		s := rise{f.at(u, v), f.b * w, f.c * w}
+		floor = max(floor, s.at+min(0, s.du)+min(0, s.dv))
+		sq.survivors = append(sq.survivors, s)
 	}
 	floor -= sq.margin
-	mark := len(to)
-	sq.survivors = sq.survivors[:0]
+	mark, n := len(to), 0
 	var champion [4]int // who is largest at each corner
-	best := [4]float64{math.Inf(-1), math.Inf(-1), math.Inf(-1), math.Inf(-1)}
-	for _, j := range list {
-		f := &fs[j]
-		at, du, dv := f.at(u, v), f.b*w, f.c*w
-		if at+max(0, du)+max(0, dv) < floor {
+	best := [4]float64{floor, floor, floor, floor}
+	for i, j := range list {
+		s := sq.survivors[i]
+		if s.at+max(0, s.du)+max(0, s.dv) < floor {
 			continue
 		}
-		for k, g := range [4]float64{at, at + du, at + dv, at + du + dv} {
+		for k, g := range [4]float64{s.at, s.at + s.du, s.at + s.dv, s.at + s.du + s.dv} {
 			if g > best[k] {
-				best[k], champion[k] = g, len(sq.survivors)
+				best[k], champion[k] = g, n
 			}
 		}
 		to = append(to, j)
-		sq.survivors = append(sq.survivors, struct{ at, du, dv float64 }{at, du, dv})
+		sq.survivors[n] = s
+		n++
 	}
+	sq.survivors = sq.survivors[:n]
 
 	kept := mark
 	for i := range sq.survivors {

@@ -232,12 +232,14 @@ type entry struct {
 	facet      int32
 	at, along  vec
 	wavelength gems.Wavelength
+	index      float64    // of the stone there
 	xyz        [3]float64 // how the wavelength counts for X, Y and Z; Y is the ray's weight in every mean
 }
 
 // trace follows one chunk of points in every surrounding.
 func (r *run) trace(unit, scrambling, number int) *chunk {
 	c := &chunk{unit: unit, scrambling: scrambling, sums: make([]sums, len(r.columns))}
+	c.entries, c.pixels = make([]entry, 0, chunkPoints), make([]int32, 0, chunkPoints*r.images)
 	points := r.points[scrambling]
 	for i := uint32(number * chunkPoints); i < uint32((number+1)*chunkPoints); i++ {
 		if e, u, v, ok := r.enter(points, i); ok {
@@ -246,7 +248,7 @@ func (r *run) trace(unit, scrambling, number int) *chunk {
 		}
 	}
 	c.ledgers, c.lit = make([][]Ledger, len(r.columns)), make([][]float64, len(r.columns))
-	var rays []ray // of all plain columns, one after the other
+	rays := make([]ray, 0, len(r.columns)*len(c.entries)) // of all plain columns, one after the other
 	for k := range r.columns {
 		if t := r.columns[k].traveller; t != nil {
 			c.ledgers[k], c.lit[k] = r.travel(t, points, k, c.entries, &c.sums[k])
@@ -294,6 +296,7 @@ func (r *run) enter(points points, i uint32) (e entry, u, v float64, ok bool) {
 	default:
 		e.wavelength = gems.SpectrumWavelength(pw)
 	}
+	e.index, _ = r.scene.Material.Index(e.wavelength) // known to exist since newRun
 	return e, u, v, true
 }
 
@@ -313,16 +316,18 @@ func (r *run) appendPixels(pixels []int32, u, v float64) []int32 {
 	return pixels
 }
 
-// plainRays appends a column's rays for the plain tracer. All indices are known to
-// exist since newRun.
+// plainRays appends a column's rays for the plain tracer.
 func (r *run) plainRays(rays []ray, points points, column int, entries []entry) []ray {
 	medium := r.scene.Surroundings[column].Medium
+	unit, colour := r.tracer.body.unit, r.scene.Material.Absorption
 	for i := range entries {
 		e := &entries[i]
-		n, _ := r.scene.Material.Index(e.wavelength)
-		m, _ := medium.Index(e.wavelength)
-		absorb := meanAbsorption(r.scene.Material.Absorption, e.wavelength) * r.tracer.body.unit
-		rays = append(rays, ray{e.facet, int32(column), e.at, e.along, n, m, absorb, e.wavelength, e.xyz[1], newDice(points, e.point, column)})
+		m, _ := medium.Index(e.wavelength) // known to exist since newRun
+		rays = append(rays, ray{
+			facet: e.facet, column: int32(column), at: e.at, along: e.along,
+			n: e.index, m: m, absorb: meanAbsorption(colour, e.wavelength) * unit,
+			wavelength: e.wavelength, weight: e.xyz[1], die: newDice(points, e.point, column),
+		})
 	}
 	return rays
 }
