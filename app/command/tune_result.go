@@ -26,7 +26,8 @@ type tuneAbout struct {
 	WidthMM     float64        `json:"width_mm"`
 	Goal        []tuneAim      `json:"goal"`
 	Cases       []tuneCase     `json:"cases"`
-	Worst       bool           `json:"worst"` // the worst case counts, not their mean
+	Worst       bool           `json:"worst"`      // the worst case counts, not their mean
+	SteadyDeg   float64        `json:"steady_deg"` // a stone counts no more than the worst of those with one angle off by so much
 	HeadDeg     float64        `json:"head_deg"`
 	Variables   []tuneVariable `json:"variables"`
 	Seed        uint64         `json:"seed"`
@@ -75,7 +76,7 @@ func (t *tuning) about(stopped error) tuneAbout {
 	p := &t.problem
 	a := tuneAbout{
 		Plan: t.name, Material: t.material.Key, BodyColour: t.material.Describe().BodyColour, WidthMM: t.width,
-		Worst: p.Goal.Worst, HeadDeg: p.Head.Degrees(), Seed: p.Seed, Seconds: time.Since(t.began).Seconds(), Interrupted: stopped != nil,
+		Worst: p.Goal.Worst, SteadyDeg: p.Steady.Degrees(), HeadDeg: p.Head.Degrees(), Seed: p.Seed, Seconds: time.Since(t.began).Seconds(), Interrupted: stopped != nil,
 	}
 	for _, aim := range p.Goal.Aims {
 		a.Goal = append(a.Goal, tuneAim{aim.Measure.String(), aim.Weight})
@@ -174,6 +175,9 @@ func (t *tuning) caseWords() string {
 		words += ", light " + strings.Join(lights, ", ")
 	}
 	words += fmt.Sprintf(", head %g°", t.problem.Head.Degrees())
+	if t.problem.Steady > 0 {
+		words += fmt.Sprintf(", steady within %g°", t.problem.Steady.Degrees())
+	}
 	if len(t.problem.Goal.Cases) > 1 {
 		if t.problem.Goal.Worst {
 			words += ", the worst case"
@@ -297,7 +301,7 @@ func (t *tuning) printOutcome(o *tune.Outcome) {
 	for i, a := range t.problem.Goal.Aims {
 		row(measureName(a.Measure), func(tr *tune.Trial) (float64, float64) { return tr.Measures[i], tr.MeasureErrors[i] })
 	}
-	if len(t.problem.Goal.Aims) > 1 {
+	if len(t.problem.Goal.Aims) > 1 || t.problem.Steady > 0 {
 		row("goal", func(tr *tune.Trial) (float64, float64) { return tr.Score, tr.Error })
 	}
 	tab.Flush()

@@ -56,7 +56,7 @@ table = 0.6
 func TestTune(t *testing.T) {
 	plan := file(t, "tent.toml", small)
 	found := filepath.Join(t.TempDir(), "found.toml")
-	args := []string{"tune", plan, "--vary", "P=38..46,C=36..44", "--step", "0.5", "--json", "--write", found, "--keep", filepath.Join(t.TempDir(), "seen")}
+	args := []string{"tune", plan, "--vary", "P=38..46", "--step", "0.5", "--json", "--write", found, "--keep", filepath.Join(t.TempDir(), "seen")}
 	got := runCommand(args...)
 	if got.status != Done {
 		t.Fatalf("status %d: %s", got.status, got.stderr)
@@ -276,7 +276,7 @@ func TestTuneFaults(t *testing.T) {
 func TestTuneStopped(t *testing.T) {
 	plan := file(t, "tent.toml", small)
 	kept := filepath.Join(t.TempDir(), "seen")
-	args := []string{"tune", plan, "--vary", "P=39..45,C=36..44", "--step", "0.5", "--json"}
+	args := []string{"tune", plan, "--vary", "P=39..45", "--step", "0.25", "--json"}
 	ctx, cancel := context.WithCancelCause(context.Background())
 	watch := watcher(func(text string) {
 		if strings.Contains(text, "20 %") {

@@ -29,6 +29,9 @@ func TradeOff(ctx context.Context, p *Problem, memory *Memory, report func(Progr
 	if len(p.Goal.Aims) != 2 {
 		return nil, errors.New("a trade-off is between two goals: name two")
 	}
+	if p.Steady > 0 {
+		return nil, errors.New("a trade-off shows stones as they are, not what errors make of them: leave steady out")
+	}
 	j, err := newJudge(p)
 	if err != nil {
 		return nil, err

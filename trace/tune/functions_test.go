@@ -10,6 +10,8 @@ import (
 	"strings"
 	"testing"
 	"time"
+
+	"pavilight/facets"
 )
 
 // plainJudge returns a judge of a plain function of the variables instead of stones:
@@ -301,5 +303,31 @@ func TestCancel(t *testing.T) {
 		t.Fatal("nothing was tried")
 	} else if time.Sleep(10 * time.Millisecond); j.tried() != n {
 		t.Error("it goes on after it has returned")
+	}
+}
+
+// A steady goal keeps off the cliff that the plain one climbs to: with errors of 0.1 about
+// the best of a slope that falls off at 2, the best lies 0.1 before it.
+func TestSteady(t *testing.T) {
+	vs := []Variable{{Name: "a", Unit: "degrees", Low: 0, High: 3, Now: 1, Step: 0.05}}
+	f := func(x []float64) float64 {
+		if x[0] > 2+1e-9 {
+			return 0
+		}
+		return -x[0]
+	}
+	for steady, want := range map[facets.Angle]float64{0: 2, 0.1 * facets.Degree: 1.9} {
+		j := plainJudge(vs, 0, f)
+		j.Steady = steady
+		o, err := search(context.Background(), j, nil)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if math.Abs(o.Best.Values[0]-want) > 1e-6 {
+			t.Errorf("steady within %v: found %v, want %v", steady, o.Best.Values, want)
+		}
+		if lost := math.Abs(o.Best.Score - (want - steady.Degrees())); lost > 1e-6 {
+			t.Errorf("steady within %v: score %v", steady, o.Best.Score)
+		}
 	}
 }

@@ -30,6 +30,8 @@ type Trial struct {
 	Seen          bool      `json:"seen"`            // it was traced: every fit one was
 	Words         []string  `json:"words,omitempty"` // why it does not fit, otherwise
 	Short         float64   `json:"short,omitempty"` // how far from fit: sum of the breaches, or a stone's absence
+
+	freedom float64 // degrees of freedom of Error
 }
 
 // merit orders trials for the search: fit stones by score, others below all of them
@@ -47,6 +49,9 @@ type sight struct {
 	Errors [][]float64 `json:"errors,omitempty"` // standard errors likewise
 	Words  []string    `json:"words,omitempty"`  // why the stone is not fit; empty if it is
 	Short  float64     `json:"short,omitempty"`
+	// Pictures is how many independent pictures the errors of what an eye sees come from; 0
+	// where nothing was measured so.
+	Pictures int `json:"pictures,omitempty"`
 }
 
 // noStone is how far from fit values count for which there is no stone at all. Any
@@ -134,9 +139,55 @@ func fromKey(name string, n int) (values []float64, e effort) {
 	return values, e
 }
 
-// try judges values. The only errors are those of ctx and of the file that keeps what
-// was seen.
+// try judges values, and where the problem wants it steady, those beside them too. The
+// only errors are those of ctx and of the file that keeps what was seen.
 func (j *judge) try(ctx context.Context, values []float64, e effort) (Trial, error) {
+	t, err := j.tryAlone(ctx, values, e)
+	if err != nil || j.Steady == 0 || !t.Seen {
+		return t, err
+	}
+	for _, x := range j.nearby(values, j.Steady.Degrees()) {
+		beside, err := j.tryAlone(ctx, x, e)
+		if err == nil && !beside.Seen { // limits are for the stone itself
+			free := e
+			free.always = true
+			beside, err = j.tryAlone(ctx, x, free)
+		}
+		if err != nil {
+			return t, err
+		}
+		if !beside.Seen {
+			t.Fit, t.Short = false, t.Short+noStone/2
+			t.Words = append(t.Words, "a small error beside it leaves no such stone: "+beside.Words[0])
+			return t, nil
+		}
+		if beside.Score < t.Score {
+			t.Score, t.Error = beside.Score, beside.Error
+		}
+	}
+	return t, nil
+}
+
+// nearby returns the values with one variable moved, either way: angles by so many
+// degrees, others by their step.
+func (j *judge) nearby(x []float64, degrees float64) [][]float64 {
+	var all [][]float64
+	for i, v := range j.Variables {
+		by := v.stride()
+		if v.Unit == "degrees" {
+			by = degrees
+		}
+		for _, sign := range []float64{-1, 1} {
+			y := slices.Clone(x)
+			y[i] = math.Round((y[i]+sign*by)*1e9) / 1e9
+			all = append(all, y)
+		}
+	}
+	return all
+}
+
+// tryAlone judges one choice of values.
+func (j *judge) tryAlone(ctx context.Context, values []float64, e effort) (Trial, error) {
 	name := key(values, e, j.Seed)
 	j.mu.Lock()
 	s, ok := j.known[name]
@@ -320,6 +371,11 @@ func (j *judge) look(ctx context.Context, stone *facets.Stone, carats float64, e
 			}
 			for i, k := range cases {
 				a := &all[i]
+				for _, m := range []trace.Estimate{a.Luminance, a.DarkArea, a.Contrast, a.Fire, a.Sparkle} {
+					if s.Pictures == 0 || m.Pictures < s.Pictures {
+						s.Pictures = m.Pictures
+					}
+				}
 				set(k, Luminance, a.Luminance.Value, a.Luminance.Error)
 				set(k, DarkArea, a.DarkArea.Value, a.DarkArea.Error)
 				set(k, Contrast, a.Contrast.Value, a.Contrast.Error)
@@ -356,13 +412,20 @@ next:
 	return groups
 }
 
+// scramblingFreedom is the degrees of freedom of a standard error of the ledger, which
+// comes from 16 independent scramblings.
+const scramblingFreedom = 15
+
 // weigh scores what was seen: every case by the weighted sum of the aims, then their
 // mean or the worst of them.
 func (g *Goal) weigh(values []float64, s sight) Trial {
 	t := Trial{
 		Values: append([]float64(nil), values...),
 		Fit:    len(s.Words) == 0, Seen: len(s.Values) > 0,
-		Words: s.Words, Short: s.Short,
+		Words: s.Words, Short: s.Short, freedom: scramblingFreedom,
+	}
+	if s.Pictures > 0 {
+		t.freedom = float64(s.Pictures - 1)
 	}
 	if !t.Seen {
 		return t

@@ -135,8 +135,12 @@ type Problem struct {
 	Rough     *facets.Rough // what the stone is cut from: it is then as large as fits; nil where the pattern fixes its size
 	Head      facets.Angle  // half-angle of the viewer's head
 	Distance  float64       // of the eye, mm, for what is seen; 0 means UsualDistance
-	Seed      uint64
-	Workers   int // 0 for all cores
+	// Steady, where above 0, has a stone count no more than the worst of those whose angles
+	// are off by so much, one at a time: a best that stands at a cliff is no best. Other
+	// variables are off by their step.
+	Steady  facets.Angle
+	Seed    uint64
+	Workers int // 0 for all cores
 }
 
 // UsualDistance is how far an eye is taken to be from the stone, in mm: one foot, as
@@ -166,6 +170,9 @@ func (p *Problem) check() error {
 	}
 	if !(p.Distance >= 0) || math.IsInf(p.Distance, 0) {
 		fault("the eye's distance is %g mm; give a positive number, or 0 for the usual one", p.Distance)
+	}
+	if !(p.Steady >= 0 && p.Steady < 10*facets.Degree) {
+		fault("steady within %v: use 0 to 10 degrees", p.Steady)
 	}
 	if len(p.Goal.Cases) == 0 {
 		fault("no surrounding is named in which the stone is to be good")

@@ -12,6 +12,7 @@ import (
 	"gonum.org/v1/gonum/mat"
 	"gonum.org/v1/gonum/optimize"
 	"gonum.org/v1/gonum/stat/distmv"
+	"gonum.org/v1/gonum/stat/distuv"
 	"gonum.org/v1/gonum/stat/samplemv"
 )
 
@@ -39,9 +40,14 @@ type Outcome struct {
 // practice, no source). Other variables move by a step.
 const NearStep = 0.1 // degrees
 
-// certain is Student's t beyond which one result in 1,000 falls by chance, for the 15
-// degrees of freedom of each standard error here (one-sided; table of Student's t).
-const certain = 3.73
+// chance is how seldom a gain of nothing may be claimed.
+const chance = 1e-3
+
+// certain returns Student's t beyond which chance alone leads so seldom (one-sided), for
+// standard errors of so many degrees of freedom each.
+func certain(freedom float64) float64 {
+	return distuv.StudentsT{Mu: 0, Sigma: 1, Nu: freedom}.Quantile(1 - chance)
+}
 
 // Search looks for the values with the best score among those that fit, from the
 // pattern as it stands and from elsewhere within the limits. Goals of light have cliffs:
@@ -479,11 +485,16 @@ func (h *hunt) claim(ctx context.Context) (*Outcome, error) {
 	o.Gain = o.Best.Score - o.Start.Score
 	o.GainError = math.Hypot(o.Best.Error, o.Start.Error)
 	startFits := o.Start.Fit && h.within(o.Start.Values)
-	o.Better = o.Best.Fit && (!startFits || o.Gain > certain*o.GainError)
+	o.Better = o.Best.Fit && (!startFits || o.Gain > certain(min(o.Best.freedom, o.Start.freedom))*o.GainError)
 	if startFits && !(o.Gain > 0) { // nothing was found: the stone as it stands is the best
 		o.Best, o.Gain, o.Better = o.Start, 0, false
 	}
-	if o.Nearby, err = h.tryAll(ctx, h.nearby(o.Best.Values), nearLook); err != nil {
+	beside := h.nearby(o.Best.Values, NearStep)
+	o.Nearby = make([]Trial, len(beside))
+	if err = parallel(ctx, h.workers(), len(beside), func(ctx context.Context, i int) (err error) {
+		o.Nearby[i], err = h.tryAlone(ctx, beside[i], nearLook)
+		return err
+	}); err != nil {
 		return nil, err
 	}
 	o.Tried = h.tried()
@@ -493,23 +504,6 @@ func (h *hunt) claim(ctx context.Context) (*Outcome, error) {
 
 // nearLook looks at stones that nobody wants to cut, limits or not.
 var nearLook = effort{rays: 50_000, seen: 32, another: claims.another, always: true}
-
-// nearby returns the values with one variable moved, either way.
-func (h *hunt) nearby(x []float64) [][]float64 {
-	var all [][]float64
-	for i, v := range h.Variables {
-		by := v.stride()
-		if v.Unit == "degrees" {
-			by = NearStep
-		}
-		for _, sign := range []float64{-1, 1} {
-			y := slices.Clone(x)
-			y[i] = math.Round((y[i]+sign*by)*1e9) / 1e9
-			all = append(all, y)
-		}
-	}
-	return all
-}
 
 // nothingFits says in words why no stone was found.
 func (h *hunt) nothingFits() error {

@@ -145,7 +145,7 @@ func TestFineSweep(t *testing.T) {
 	t.Logf("sweep's best %v %.5f ± %.5f, the search's %v %.5f", best.Values, best.Score, best.Error, mine.Values, mine.Score)
 	const step = 0.05 + 1e-9
 	for i := range best.Values {
-		if d := math.Abs(best.Values[i] - mine.Values[i]); d > step && best.Score-mine.Score > certain*math.Hypot(best.Error, mine.Error) {
+		if d := math.Abs(best.Values[i] - mine.Values[i]); d > step && best.Score-mine.Score > certain(scramblingFreedom)*math.Hypot(best.Error, mine.Error) {
 			t.Errorf("%s: the search is off by %.2f°, and that costs %.5f of light return", p.Variables[i].Name, d, best.Score-mine.Score)
 		}
 	}
@@ -173,6 +173,15 @@ func TestImprovesSamplePlans(t *testing.T) {
 		}
 		if !o.Better || o.Gain < 4*o.GainError {
 			t.Errorf("%s, %s: %.4f ± %.4f from %v to %v", test.name, main, o.Gain, o.GainError, o.Start.Values, o.Best.Values)
+		}
+	}
+}
+
+// Student's t at 1 in 1,000, one-sided, as tables print it.
+func TestCertain(t *testing.T) {
+	for freedom, want := range map[float64]float64{3: 10.215, 7: 4.785, 15: 3.733} {
+		if got := certain(freedom); math.Abs(got-want) > 5.1e-4 {
+			t.Errorf("%g degrees of freedom: %.4f, want %.3f (table of Student's t)", freedom, got, want)
 		}
 	}
 }
