@@ -463,7 +463,8 @@ func TestSymmetry(t *testing.T) {
 		first          float64 // azimuth of the first mirror, degrees
 	}{
 		{"round", 8, 8, 0}, {"step", 2, 2, 0}, {"oval", 2, 2, 0}, {"triangle", 3, 3, 0}, {"cushion", 4, 4, 0},
-		{"twist", 6, 0, 0}, {"prism", 2, 2, 0}, {"rod", 4, 4, 0},
+		{"twist", 6, 0, 0}, {"pear", 1, 1, 0}, {"freeform", 1, 0, 0}, {"round-seven", 7, 7, 0}, {"round-eleven", 11, 11, 0},
+		{"prism", 2, 2, 0}, {"rod", 4, 4, 0},
 	} {
 		p, sol := solveFile(t, "../testdata/plans/"+row.plan+".toml")
 		y := sol.Stone.Symmetry()
