@@ -191,7 +191,7 @@ func (l *press) threeViews() {
 	stone := l.sheet.Solution.Stone
 	_, extent := middleOf(stone)
 	t := l.body()
-	const gap = 6
+	gap := 6.0
 	heights := t.Width("pavilion 00.00") + 7
 	const side = "from the side"
 	height := min(0.2*l.sheet.Paper.Height, 52)
@@ -199,6 +199,9 @@ func (l *press) threeViews() {
 	above := fmt.Sprintf("from above, drawn %s : 1", trimmed(scale, 2))
 	cell := func(words string) float64 { return max(scale*extent[1], t.Width(words)) }
 	tall := scale * max(extent[0], extent[2])
+	// On narrow paper the words may be wider than the views, and the views stand closer.
+	const least = 1.5
+	gap = max(least, min(gap, (l.width()-heights-cell(above)-cell("from below")-cell(side))/2))
 	l.need(tall + 3*t.Leading())
 	middle := l.y + tall/2 + 1
 	x := l.left()

@@ -155,6 +155,7 @@ var tierLine = regexp.MustCompile(`^\s*(\d+)\s+(\S+)\s+([0-9.]+)°\s+(.*)$`)
 func TestTextIsThePlan(t *testing.T) {
 	for _, name := range samplePlans(t) {
 		t.Run(name, func(t *testing.T) {
+			t.Parallel()
 			job := sampleJob(t, name)
 			job.Machine.CrownReversed = false // then the machine shows the plan's own numbers
 			s := sheetOf(t, job)
@@ -171,7 +172,7 @@ func TestTextIsThePlan(t *testing.T) {
 				}
 				next++
 				if solved.Angle == 0 {
-					if !strings.Contains(found[4], "any, as 96") {
+					if !strings.Contains(found[4], fmt.Sprintf("any, as %d ", job.Plan.Gear)) {
 						t.Errorf("%s: %q names no index for the flat", tier.Name, found[4])
 					}
 					continue
@@ -221,15 +222,24 @@ func readSetting(word string, gear int) (float64, bool) {
 	return ToGear(float64(tooth)+cheater*float64(gear)/360, gear, gear), true
 }
 
+// hardest are the plans that are set on every paper, the others on one each, in turn:
+// the usual round, the most facets, the most tiers, the deepest, the longest, no stone.
+var hardest = []string{"round.toml", "round-star.toml", "pear.toml", "round-step.toml", "marquise.toml", "rod.toml"}
+
 // TestEveryPageIsSound looks at every mark of every sheet: on the paper, in grey, of
 // readable size, and no words on other words.
 func TestEveryPageIsSound(t *testing.T) {
-	for _, name := range samplePlans(t) {
+	for i, name := range samplePlans(t) {
 		job := lit(t, sampleJob(t, name))
 		job.Gears = []int{64, 77}
 		s := sheetOf(t, job)
+		turn := 0
 		for _, paper := range Papers() {
 			for _, large := range []bool{false, true} {
+				turn++
+				if i%6 != turn%6 && !slices.Contains(hardest, name) {
+					continue
+				}
 				s.Paper, s.Large = paper, large
 				for n, page := range s.Pages() {
 					where := fmt.Sprintf("%s, %s, large %v, page %d", name, paper.Name, large, n+1)
