@@ -34,7 +34,7 @@ func (h *history[T]) push(name, merge string, state T) {
 		h.saved = -1
 	}
 	last := &h.steps[h.at]
-	if merge != "" && last.merge == merge && h.at != h.saved {
+	if merge != "" && last.merge == merge {
 		h.steps = h.steps[:h.at+1]
 		last.name, last.state = name, state
 		return
