@@ -323,6 +323,9 @@ func (t *tuning) printOutcome(o *tune.Outcome) {
 	}
 	t.printNearby(w, o)
 	fmt.Fprintf(w, "%d stones looked at; both shown are traced anew, with points that the search never used.\n", o.Tried)
+	if t.problem.Rough != nil {
+		fmt.Fprintln(w, "Weights are of the largest stone of the shape that the rough holds.")
+	}
 	if t.Write != "" {
 		fmt.Fprintf(w, "Written to %s\n", t.Write)
 	}
