@@ -76,7 +76,7 @@ func Definitions() []Definition {
 			"this program's own"},
 		{"culet_percent", "width of the level flat below, taken like the table; 0 for a point", trade},
 		{"smallest_facet_mm", "least distance between two parallel lines that hold the narrowest facet", trade},
-		{"area_mm2", "area of a facet's polygon", "geometry"},
+		{"area_mm2", "area of a facet's polygon; the surface is the sum of all", "geometry"},
 		{"volume_mm3", "a third of the sum of facet area times facet distance", "Gauss's theorem"},
 		{"carats", "volume times density, at 0.2 g a carat",
 			"metric carat, 4th General Conference on Weights and Measures, 1907 (from memory)"},

@@ -6,6 +6,7 @@ import (
 	"math"
 	"strings"
 	"text/tabwriter"
+	"unicode/utf8"
 
 	"github.com/go-gl/mathgl/mgl64"
 
@@ -123,6 +124,9 @@ func (s *subject) carats() *float64 {
 	return &weight
 }
 
+// rowName is how many columns the names of measures take.
+const rowName = 16
+
 func printCheck(w io.Writer, s *subject, r *checkResult) {
 	fmt.Fprintf(w, "%s: a closed convex solid of %d facets\n\n", s.name, len(r.Facets))
 	row := func(name, format string, args ...any) {
@@ -131,7 +135,7 @@ func printCheck(w io.Writer, s *subject, r *checkResult) {
 				args[i] = 0.0 // what rounds to nothing is written without a sign
 			}
 		}
-		fmt.Fprintf(w, "%-16s %s\n", name, fmt.Sprintf(format, args...))
+		fmt.Fprintf(w, "%-*s %s\n", rowName, name, fmt.Sprintf(format, args...))
 	}
 	if s.material != nil {
 		row("material", "%s", s.material.Name)
@@ -162,6 +166,48 @@ func printCheck(w io.Writer, s *subject, r *checkResult) {
 		fmt.Fprintf(t, "%s\t%s\t%s\t%d\t%.3f\t%s\n", g.tier, g.side, g.angle, g.count, g.area, strings.Join(g.indices, " "))
 	}
 	t.Flush()
+	fmt.Fprintln(w, "\nHow the measures are taken [and who says so]")
+	for _, d := range facets.Definitions() {
+		fmt.Fprintf(w, "%-*s %s\n", rowName, definedRow(d.Name), hanging(d.Meaning+" ["+d.Source+"]", rowName+1))
+	}
+}
+
+// definedRow returns the name of the row that shows a measure of the JSON.
+func definedRow(name string) string {
+	if name == "carats" {
+		return "weight"
+	}
+	for _, unit := range []string{"_mm", "_mm2", "_mm3", "_percent"} {
+		if bare, ok := strings.CutSuffix(name, unit); ok {
+			name = bare
+			break
+		}
+	}
+	return strings.ReplaceAll(name, "_", " ")
+}
+
+// textWidth is how many columns running text takes.
+const textWidth = 100
+
+// hanging breaks words into lines of at most textWidth columns, all but the first of
+// which begin after an indent; the first is taken to stand after it already.
+func hanging(words string, indent int) string {
+	var b strings.Builder
+	column := indent
+	for i, word := range strings.Fields(words) {
+		n := utf8.RuneCountInString(word)
+		switch {
+		case i > 0 && column+1+n > textWidth:
+			b.WriteString("\n" + strings.Repeat(" ", indent))
+			column = indent
+		case i > 0:
+			b.WriteByte(' ')
+			column++
+		}
+		b.WriteString(word)
+		column += n
+	}
+	return b.String()
 }
 
 // facetName names a facet by its tier and index, or by its side in a scan.
