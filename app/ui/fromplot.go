@@ -111,14 +111,16 @@ func (r *fromPlotRenderer) Layout(size fyne.Size) {
 				best = i + 1
 			}
 		}
-		// The name stands over the highest place of its curve, higher where another is.
+		// The name stands over the highest place of its curve, higher where another is. Each
+		// move leads up by more than keeps names apart, rounding or not, so it comes to an end.
+		const apart, move = 11, 12
 		text, peak := r.names[j].MinSize(), middle(best)
 		at := fyne.NewPos(min(peak.X-text.Width/2, left+wide-text.Width), peak.Y-text.Height)
 		for again := true; again; {
 			again = false
 			for _, t := range taken {
-				if dx, dy := at.X-t.X, at.Y-t.Y; dx > -text.Width && dx < 30 && dy > -11 && dy < 11 {
-					at.Y, again = t.Y-11, true
+				if dx, dy := at.X-t.X, at.Y-t.Y; dx > -text.Width && dx < 30 && dy > -apart && dy < apart {
+					at.Y, again = t.Y-move, true
 				}
 			}
 		}

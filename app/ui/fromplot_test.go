@@ -1,0 +1,33 @@
+package ui
+
+import (
+	"testing"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/test"
+)
+
+// TestNamesOfCurvesStandApart lays out curves whose peaks lie at the same place, at many
+// sizes: rounding must not keep the names from coming to rest, and none covers another.
+func TestNamesOfCurvesStandApart(t *testing.T) {
+	test.NewTempApp(t)
+	p := newFromPlot()
+	for high := range 20 {
+		var curves [columns][fromBins]float64
+		for j := range curves {
+			curves[j][4] = 0.031 + 0.017*float64(high)
+		}
+		p.show(curves, [columns]string{"air", "water", "oil"}, 10, true)
+		r := test.WidgetRenderer(p).(*fromPlotRenderer)
+		for height := float32(100); height < 260; height += 0.7 {
+			r.Layout(fyne.NewSize(230, height))
+			for i, a := range r.names {
+				for _, b := range r.names[:i] {
+					if d := a.Position().Y - b.Position().Y; d > -10 && d < 10 {
+						t.Fatalf("height %v: %q and %q lie %v apart", height, a.Text, b.Text, d)
+					}
+				}
+			}
+		}
+	}
+}
