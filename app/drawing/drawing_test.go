@@ -245,3 +245,28 @@ func TestWrapAndCut(t *testing.T) {
 		t.Errorf("a line end is lost: %q", got)
 	}
 }
+
+// TestRasterCutsAtTheEdge fills shapes that reach beyond the page on every side.
+func TestRasterCutsAtTheEdge(t *testing.T) {
+	black := Ink{A: 255}
+	for _, at := range []Point{{-5, -5}, {5, 5}, {-5, 5}, {5, -5}, {0, 0}, {20, 20}, {-40, 2}} {
+		page := &Page{Width: 10, Height: 10}
+		page.Rectangle(Style{Fill: black}, at, 10, 10)
+		page.Circle(Style{Stroke: black, Width: 1}, at, 5)
+		img := page.Raster(4)
+		for y := range 40 {
+			for x := range 40 {
+				mm := Point{(float64(x) + 0.5) / 4, (float64(y) + 0.5) / 4}
+				inside := mm.X > at.X+0.3 && mm.X < at.X+9.7 && mm.Y > at.Y+0.3 && mm.Y < at.Y+9.7
+				if got := img.RGBAAt(x, y); inside && got.R != 0 {
+					t.Fatalf("a square from %v: pixel %d, %d is %v", at, x, y, got)
+				}
+				far := math.Abs(math.Hypot(mm.X-at.X, mm.Y-at.Y)-5) > 1 &&
+					(mm.X < at.X-0.3 || mm.X > at.X+10.3 || mm.Y < at.Y-0.3 || mm.Y > at.Y+10.3)
+				if got := img.RGBAAt(x, y); far && got.R != 255 {
+					t.Fatalf("a square from %v: pixel %d, %d outside is %v", at, x, y, got)
+				}
+			}
+		}
+	}
+}

@@ -42,7 +42,8 @@ func (r *rasterPainter) flush(ink Ink) {
 	}
 	box := image.Rect(int(math.Floor(max(low.X, -1))), int(math.Floor(max(low.Y, -1))),
 		int(math.Ceil(min(high.X, 1e5)))+1, int(math.Ceil(min(high.Y, 1e5)))+1)
-	if len(r.shape) > 0 && !box.Intersect(r.dst.Rect).Empty() {
+	box = box.Intersect(r.dst.Rect) // the rasteriser cuts off what reaches beyond its frame
+	if len(r.shape) > 0 && !box.Empty() {
 		r.vector.Reset(box.Dx(), box.Dy())
 		at := func(p Point) (float32, float32) {
 			return float32(p.X - float64(box.Min.X)), float32(p.Y - float64(box.Min.Y))
