@@ -224,6 +224,12 @@ func (b *Bench) SetAround(column int, a Around) {
 	b.onChange()
 }
 
+// Adopt takes over a plan that was found by other means, as one step.
+func (b *Bench) Adopt(name string, plan *facets.Plan) {
+	b.Doc.Edit(name, "", func(p *facets.Plan) { *p = *plan })
+	b.show()
+}
+
 // Undo takes the last step back.
 func (b *Bench) Undo() {
 	if b.Doc.Undo() {

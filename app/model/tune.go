@@ -219,7 +219,8 @@ func (t *Tune) Begin() {
 		defer close(finished)
 		defer cancel()
 		err := r.work(ctx)
-		t.do(func() { t.ended(r.number, err, ctx.Err() != nil) })
+		cancelled := ctx.Err() != nil // now: on the way out this goroutine cancels it, too
+		t.do(func() { t.ended(r.number, err, cancelled) })
 	}()
 	t.onChange()
 }

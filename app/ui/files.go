@@ -238,6 +238,15 @@ func (w *window) closeKept() {
 func (w *window) leave() {
 	w.files.keepWindowSize(w.win.Canvas().Size())
 	w.endKeeping()
-	w.bench.Look.Close()
+	w.stopRooms()
 	w.win.Close()
+}
+
+// stopRooms ends what runs in any room and waits for it.
+func (w *window) stopRooms() {
+	w.bench.Look.Close()
+	w.tuning.tune.Stop()
+	w.cutting.cut.Stop()
+	w.tuning.tune.Wait()
+	w.cutting.cut.Wait()
 }

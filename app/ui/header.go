@@ -25,16 +25,9 @@ func (r room) String() string { return [...]string{"Look", "Tune", "Cut", "Tell"
 
 // coming says what a room that this build lacks will hold, and what does the job today.
 func (r room) coming() string {
-	switch r {
-	case tuneRoom:
-		return "Here the angles will be searched for that suit this material, under the limits of the rough. " +
-			"This build does not search: change the angles by hand in Look, where the maps follow the slider."
-	case cutRoom:
-		return "Here the sheet for the bench will be laid out: steps, index settings, angles, diagrams, sizes and cautions. " +
-			"This build does not print it."
-	case tellRoom:
+	if r == tellRoom {
 		return "Here the report for a client will be put together: two stones or three surroundings side by side, and the tilt animation. " +
-			"This build does not write it; pavilight look PLAN --out FOLDER writes the maps as pictures."
+			"This build does not write it in the window; pavilight look PLAN --out FOLDER writes the maps as pictures."
 	}
 	return ""
 }

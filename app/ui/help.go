@@ -27,6 +27,12 @@ func (w *window) about() {
 	w.raise(dialog.NewCustom("About Pavilight", "Close", scroll, w.win))
 }
 
+// programName is the program's name and version, as sheets print it.
+func programName() string {
+	first, _, _ := strings.Cut(versions(), "\n")
+	return first
+}
+
 // versions lists the program's own version and those of the libraries that matter.
 func versions() string {
 	lines := []string{}

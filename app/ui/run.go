@@ -61,7 +61,7 @@ func Run(ctx context.Context, o Options) error {
 		w.keepNow()
 	}
 	w.endKeeping()
-	w.bench.Look.Close()
+	w.stopRooms()
 	return nil
 }
 

@@ -60,6 +60,11 @@ type window struct {
 	rayTitle *wrapped
 	ray      *rayList
 
+	tuning  tuneBench
+	tuneBox fyne.CanvasObject
+	cutting cutBench
+	cutBox  fyne.CanvasObject
+
 	message *line
 	light   *line
 
@@ -193,8 +198,11 @@ func (w *window) content() fyne.CanvasObject {
 	w.notice.Alignment = fyne.TextAlignCenter
 	w.coming = container.NewCenter(container.NewGridWrap(fyne.NewSize(460, 160), w.notice))
 	w.coming.Hide()
+	w.tuneBox, w.cutBox = w.buildTuneRoom(), w.buildCutRoom()
+	w.tuneBox.Hide()
+	w.cutBox.Hide()
 	status := container.New(layout.NewCustomPaddedLayout(2, 4, 12, 12), container.NewGridWithColumns(2, w.message, w.light))
-	return container.NewBorder(w.headerBar(), status, nil, nil, container.NewStack(w.body, w.coming))
+	return container.NewBorder(w.headerBar(), status, nil, nil, container.NewStack(w.body, w.tuneBox, w.cutBox, w.coming))
 }
 
 func (w *window) headerBar() fyne.CanvasObject {
@@ -292,14 +300,19 @@ func (w *window) enter(r room) {
 	for k := range rooms {
 		w.doors[k].setOpen(k == r)
 	}
-	if r == lookRoom {
-		w.coming.Hide()
-		w.body.Show()
-		return
+	setVisible(w.body, r == lookRoom)
+	setVisible(w.tuneBox, r == tuneRoom)
+	setVisible(w.cutBox, r == cutRoom)
+	setVisible(w.coming, r == tellRoom)
+	switch r {
+	case tuneRoom:
+		w.enterTune()
+		w.refreshTune()
+	case cutRoom:
+		w.enterCut()
+	case tellRoom:
+		w.notice.SetText(r.coming())
 	}
-	w.notice.SetText(r.coming())
-	w.body.Hide()
-	w.coming.Show()
 }
 
 // say tells why an entry was refused, and takes it back with nil.
