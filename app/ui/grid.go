@@ -323,7 +323,7 @@ func (g *grid) Layout(_ []fyne.CanvasObject, size fyne.Size) {
 	wide := (size.Width-gutter-scaleWide)/columns - between
 	high := func(taken float32) float32 { return (size.Height-head-foot-taken)/model.Rows - beneath }
 	strip := g.strip.MinSize().Height + beneath
-	if high(strip) < leastWithStrip { // the strip is not worth smaller maps than that
+	if high(strip) < min(leastWithStrip, wide) { // the strip is not worth smaller maps than that
 		strip = 0
 	}
 	setVisible(g.strip, strip > 0)
