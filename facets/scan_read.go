@@ -51,10 +51,27 @@ func (m *rawMesh) resolution() float64 {
 	ulp := math.Ldexp(largest, -52)
 	if m.binary32 || m.digits >= digitsOfFloat32 && m.holdsFloat32() {
 		ulp = math.Ldexp(largest, -23)
-	} else if m.digits > 0 && m.digits < 16 {
+	} else if m.digits > 0 && m.digits < 16 && !m.plainNumbers() {
 		ulp = math.Pow(10, math.Floor(math.Log10(largest))+1-float64(m.digits))
 	}
 	return ulp
+}
+
+// plainNumbers reports whether the file's numbers are so short, as in a block of 4 by
+// 3 by 2.5, that they are the corners themselves: nobody rounds a measurement to two
+// digits, or a whole one to three.
+func (m *rawMesh) plainNumbers() bool {
+	if m.digits > 3 {
+		return false
+	}
+	for _, p := range m.points {
+		for _, x := range p {
+			if m.digits == 3 && x != math.Trunc(x) {
+				return false
+			}
+		}
+	}
+	return true
 }
 
 // digitsOfFloat32 is the number of digits that print every float32 apart (IEEE 754-2019, 5.12.2).
