@@ -51,7 +51,10 @@ func (c *Cut) Make(plan *facets.Plan, material *gems.Material, around []Around, 
 		c.onChange()
 		return
 	}
-	job := sheet.Job{Plan: plan, Material: material, Machine: sheet.Plain(), HeadDeg: head.Degrees(), Paper: paper, Large: c.Large, Program: program}
+	job := sheet.Job{
+		Plan: plan, Material: material, Machine: sheet.Plain(), HeadDeg: head.Degrees(),
+		Paper: paper, Large: c.Large, Program: program,
+	}
 	var media []*gems.Material
 	for _, a := range around {
 		media = append(media, a.Medium)
@@ -82,7 +85,9 @@ func (c *Cut) Make(plan *facets.Plan, material *gems.Material, around []Around, 
 	c.onChange()
 }
 
-func makeSheet(ctx context.Context, job *sheet.Job, maps bool, media []*gems.Material, report func(float64)) (*sheet.Sheet, []*image.RGBA, error) {
+// makeSheet works a job out and paints its pages.
+func makeSheet(ctx context.Context, job *sheet.Job, maps bool, media []*gems.Material,
+	report func(float64)) (*sheet.Sheet, []*image.RGBA, error) {
 	if maps {
 		if err := sheet.Trace(ctx, job, media, report); err != nil {
 			return nil, nil, err

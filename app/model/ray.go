@@ -188,7 +188,8 @@ func (r *Ray) Stretches(reach float64) []Stretch {
 		{From: p.Entry.Add(eye.Mul(reach)), To: p.Entry, Share: 1, Bounce: -1, Goes: trace.Unresolved},
 	}
 	if p.Surface > faint {
-		drawn = append(drawn, Stretch{From: p.Entry, To: p.Entry.Add(p.Mirrored.Mul(reach / 2)), Share: p.Surface, Goes: trace.Surface, Bounce: -1})
+		away := p.Entry.Add(p.Mirrored.Mul(reach / 2))
+		drawn = append(drawn, Stretch{From: p.Entry, To: away, Share: p.Surface, Goes: trace.Surface, Bounce: -1})
 	}
 	from := p.Entry
 	for i, b := range p.Bounces {

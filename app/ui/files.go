@@ -197,7 +197,8 @@ func (w *window) unlessUnsaved(what string, do func()) {
 		w.asked[label] = b
 		return b
 	}
-	text := widget.NewLabel("“" + strings.TrimSuffix(w.bench.Doc.Title(), "*") + "” has changes that are not saved.\nSave them before you " + what + "?")
+	text := widget.NewLabel("“" + strings.TrimSuffix(w.bench.Doc.Title(), "*") +
+		"” has changes that are not saved.\nSave them before you " + what + "?")
 	d = dialog.NewCustomWithoutButtons("Unsaved changes", text, w.win)
 	d.SetButtons([]fyne.CanvasObject{
 		choice("Cancel", widget.MediumImportance, func() {}),

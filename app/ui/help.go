@@ -65,7 +65,8 @@ func versions() string {
 func (w *window) diagnostics() string {
 	s := w.bench.Look.Settings()
 	size := w.win.Canvas().Size()
-	return fmt.Sprintf("%s\nwindow %.0f x %.0f, scale %.2f, text %.1f, theme %s\nprocessors %d, tracing on %d\nmaps of %d pixels\nplan %q: %s\nstate: %s\n",
+	return fmt.Sprintf("%s\nwindow %.0f x %.0f, scale %.2f, text %.1f, theme %s\n"+
+		"processors %d, tracing on %d\nmaps of %d pixels\nplan %q: %s\nstate: %s\n",
 		versions(), size.Width, size.Height, w.win.Canvas().Scale(), w.files.textScale(), w.files.brightness(),
 		runtime.NumCPU(), s.Workers, s.Pixels, w.bench.Doc.Plan().Name, strings.Join(w.bench.Troubles(), "; "), w.bench.Look.Status())
 }
@@ -85,9 +86,11 @@ func (w *window) firstSteps() {
 	all := container.NewVBox(
 		hint("Move a slider", "Every tier has its angle at the left. All six maps follow while the slider moves, then they refine. "+
 			"The ticks a, w and o on a pavilion tier are the critical angles in air, water and oil: below its tick a facet begins to leak."),
-		hint("Point at a map", "The numbers under the pointer appear in all six maps at once. Above, light that comes back; below, light that leaks. "+
+		hint("Point at a map", "The numbers under the pointer appear in all six maps at once. "+
+			"Above, light that comes back; below, light that leaks. "+
 			"Click to follow the ray there, facet by facet; a double click enlarges the map."),
-		hint("Open your own plan", "Drop a plan or a scan on the window, or take one of the samples from the File menu. What you change can be undone, step by step."),
+		hint("Open your own plan", "Drop a plan or a scan on the window, or take one of the samples from the File menu. "+
+			"What you change can be undone, step by step."),
 	)
 	w.raise(dialog.NewCustom("First steps", "Close", container.NewGridWrap(fyne.NewSize(520, 280), all), w.win))
 }

@@ -249,7 +249,8 @@ func (w *window) showChoices() {
 			box := func(f *numberField) fyne.CanvasObject {
 				return container.NewGridWrap(fyne.NewSize(62, f.MinSize().Height), f)
 			}
-			t.choices.Add(container.NewBorder(nil, nil, nil, container.NewHBox(box(pair[0]), newWord(colourDim, theme.SizeNameText, "to"), box(pair[1])), check))
+			limits := container.NewHBox(box(pair[0]), newWord(colourDim, theme.SizeNameText, "to"), box(pair[1]))
+			t.choices.Add(container.NewBorder(nil, nil, nil, limits, check))
 		}
 		t.choices.Refresh()
 	}
