@@ -2,14 +2,19 @@ package trace
 
 import (
 	"context"
+	"flag"
 	"fmt"
 	"math"
 	"math/rand/v2"
+	"os"
+	"strings"
 	"testing"
 
 	"pavilight/facets"
 	"pavilight/gems"
 )
+
+var planes = flag.String("planes", "", "write the brilliant's planes here (nx,ny,nz,distance) when BenchmarkGrid runs")
 
 // Segments, in the sense of these benchmarks, are facet hits inside the stone.
 
@@ -39,6 +44,15 @@ func BenchmarkFacets(b *testing.B) {
 // by a die at 1e-6 instead. The ledger is reported too, so that a tracer cannot win by
 // doing less.
 func BenchmarkGrid(b *testing.B) {
+	if *planes != "" {
+		var rows strings.Builder
+		for _, f := range brilliant(b).Facets {
+			fmt.Fprintf(&rows, "%.15f,%.15f,%.15f,%.15f\n", f.Normal[0], f.Normal[1], f.Normal[2], f.Distance)
+		}
+		if err := os.WriteFile(*planes, []byte(rows.String()), 0o644); err != nil {
+			b.Fatal(err)
+		}
+	}
 	for _, form := range []string{"float64", "kernel"} {
 		for _, averaged := range []bool{true, false} {
 			b.Run(fmt.Sprintf("%s/averaged=%v", form, averaged), func(b *testing.B) {
@@ -53,7 +67,6 @@ func BenchmarkGrid(b *testing.B) {
 				for b.Loop() {
 					rays, columns[0] = rays[:0], sums{}
 					for i := range grid * grid {
-						// The stone is 2 wide; its middle lies 0.00 beside that of the outline's square.
 						u, v := -1+2*(float64(i%grid)+0.5137)/grid, -1+2*(float64(i/grid)+0.5291)/grid
 						if facet, x, ok := tr.outline.enter(u*tr.outline.half, v*tr.outline.half); ok {
 							rays = append(rays, ray{facet: int32(facet), at: x, along: vec{0, 0, -1}, n: 2.417, m: 1, weight: 1, die: dice(i)})

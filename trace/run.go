@@ -188,8 +188,9 @@ func (r *run) pass(ctx context.Context) error {
 }
 
 // adder takes chunks into a run in the order of their numbers, whoever traced them:
-// sums of rounded numbers depend on their order. The workers do that themselves, one
-// at a time, so that a run keeps no more processors busy than it was given.
+// sums of rounded numbers depend on their order. It takes one of every scrambling at a
+// time. The workers do that themselves, one at a time, so that a run keeps no more
+// processors busy than it was given.
 type adder struct {
 	run     *run
 	mutex   sync.Mutex // over what follows
@@ -206,21 +207,37 @@ func (a *adder) take(c *chunk) {
 		return
 	}
 	a.adding = true
-	for c := a.waiting[a.added]; c != nil; c = a.waiting[a.added] {
-		delete(a.waiting, a.added)
+	for batch := a.next(); batch != nil; batch = a.next() {
 		a.mutex.Unlock()
-		a.run.add(c)
+		a.run.add(batch)
 		a.mutex.Lock()
-		a.added++
+		a.added += len(batch)
 	}
 	a.adding = false
+}
+
+// next takes the next chunk of every scrambling off those that wait; nil if one of
+// them is not there yet.
+func (a *adder) next() (batch []*chunk) {
+	for i := range scramblings {
+		c := a.waiting[a.added+i]
+		if c == nil {
+			return nil
+		}
+		batch = append(batch, c)
+	}
+	for _, c := range batch {
+		delete(a.waiting, c.unit)
+	}
+	return batch
 }
 
 // chunk is the outcome of a run of points of one scrambling.
 type chunk struct {
 	unit, scrambling int
 	entries          []entry
-	pixels           []int32     // of each entry's images
+	pixels           [][]int32   // by image, in which it lies for each entry
+	weights          []float64   // of each entry
 	ledgers          [][]Ledger  // by column, of each entry
 	lit              [][]float64 // likewise the luminance seen, where colour is gathered
 	sums             []sums      // by column
@@ -239,12 +256,17 @@ type entry struct {
 // trace follows one chunk of points in every surrounding.
 func (r *run) trace(unit, scrambling, number int) *chunk {
 	c := &chunk{unit: unit, scrambling: scrambling, sums: make([]sums, len(r.columns))}
-	c.entries, c.pixels = make([]entry, 0, chunkPoints), make([]int32, 0, chunkPoints*r.images)
+	c.entries, c.pixels = make([]entry, 0, chunkPoints), make([][]int32, r.images)
+	for i := range c.pixels {
+		c.pixels[i] = make([]int32, 0, chunkPoints)
+	}
+	c.weights = make([]float64, 0, chunkPoints)
 	points := r.points[scrambling]
 	for i := uint32(number * chunkPoints); i < uint32((number+1)*chunkPoints); i++ {
 		if e, u, v, ok := r.enter(points, i); ok {
 			c.entries = append(c.entries, e)
-			c.pixels = r.appendPixels(c.pixels, u, v)
+			c.weights = append(c.weights, e.xyz[1])
+			r.appendPixels(c.pixels, u, v)
 		}
 	}
 	c.ledgers, c.lit = make([][]Ledger, len(r.columns)), make([][]float64, len(r.columns))
@@ -300,10 +322,10 @@ func (r *run) enter(points points, i uint32) (e entry, u, v float64, ok bool) {
 	return e, u, v, true
 }
 
-// appendPixels appends the pixels in which (u, v) of the picture and its images lie.
-func (r *run) appendPixels(pixels []int32, u, v float64) []int32 {
+// appendPixels appends, by image, the pixel in which that of (u, v) of the picture lies.
+func (r *run) appendPixels(pixels [][]int32, u, v float64) {
 	k, n := float64(r.settings.Pixels)/(2*r.tracer.outline.half), r.settings.Pixels
-	for i := range r.images {
+	for i := range pixels {
 		iu, iv := u, v
 		if i > 0 {
 			iu, iv = r.symmetry.image(u, v, i)
@@ -311,9 +333,8 @@ func (r *run) appendPixels(pixels []int32, u, v float64) []int32 {
 		column, row := int((r.tracer.outline.half+iu)*k), int((r.tracer.outline.half+iv)*k)
 		// Images may round across the picture's edge.
 		column, row = max(0, min(column, n-1)), max(0, min(row, n-1))
-		pixels = append(pixels, int32((n-1-row)*n+column))
+		pixels[i] = append(pixels[i], int32((n-1-row)*n+column))
 	}
-	return pixels
 }
 
 // plainRays appends a column's rays for the plain tracer.
@@ -351,18 +372,27 @@ func (r *run) travel(t *traveller, points points, column int, entries []entry, t
 	return ledgers, lit
 }
 
-// add takes a chunk into the run's sums and maps.
-func (r *run) add(c *chunk) {
-	r.rays += len(c.entries)
+// add takes chunks into the run's sums and maps. It goes through the map image by
+// image, since each image of all entries falls on one sector of it: a part that stays
+// in the processor's memory.
+func (r *run) add(batch []*chunk) {
+	for _, c := range batch {
+		r.rays += len(c.entries)
+		for k := range r.columns {
+			r.columns[k].scrambled[c.scrambling].add(&c.sums[k])
+		}
+	}
 	for k := range r.columns {
-		col := &r.columns[k]
-		col.scrambled[c.scrambling].add(&c.sums[k])
-		for i := range c.entries {
-			e := &c.entries[i]
-			for _, pixel := range c.pixels[i*r.images : (i+1)*r.images] {
-				col.mapped.add(int(pixel), e.xyz[1], &c.ledgers[k][i])
+		mapped := r.columns[k].mapped
+		for image := range r.images {
+			for _, c := range batch {
+				for i, pixel := range c.pixels[image] {
+					mapped.add(int(pixel), c.weights[i], &c.ledgers[k][i])
+				}
 				if r.settings.Colour {
-					col.mapped.addColour(int(pixel), c.lit[k][i], e.xyz)
+					for i, pixel := range c.pixels[image] {
+						mapped.addColour(int(pixel), c.lit[k][i], c.entries[i].xyz)
+					}
 				}
 			}
 		}
