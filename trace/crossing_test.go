@@ -2,6 +2,8 @@ package trace
 
 import (
 	"math"
+	"math/cmplx"
+	"math/rand/v2"
 	"testing"
 )
 
@@ -88,4 +90,45 @@ func TestAbsorbingFilmDulls(t *testing.T) {
 			t.Errorf("thickness %v: %+v: light at 45° must be dulled, and none go through", d, c)
 		}
 	}
+}
+
+// TestMeetAgainstFields splits beams in all states of polarisation at a facet and compares
+// them, as matrices of means of products of their fields, with fields split on paper.
+func TestMeetAgainstFields(t *testing.T) {
+	const source = "Fresnel's equations for fields, Born & Wolf 1.5.2 (20), (21)"
+	rng := rand.New(rand.NewPCG(2, 8))
+	for range 2000 {
+		n1, n2 := 1+1.5*rng.Float64(), 1+1.5*rng.Float64()
+		d, v := unit(rng), unit(rng)
+		cosI := d.dot(v)
+		if cosI < 0 {
+			v, cosI = v.scale(-1), -cosI
+		}
+		l := polarised(rng, d)
+		// A fully polarised beam is one field.
+		ea := complex(math.Sqrt(max(0, (1+l.q)/2)), 0)
+		eb := complex(l.u, -l.v) / (2 * ea)
+		e := along(l.a.mgl(), ea).plus(along(l.b.mgl(), eb))
+		back, _, out, inside := meet([]field{e}, d.mgl(), v.mgl(), n1, n2)
+		c := plainCrossing(n1, n2, cosI)
+		reflected, through := l.meet(&c, d, v, fromMgl(out))
+		near(t, "reflected", apart(reflected, back), 0, 1e-9, source)
+		near(t, "gone through", apart(through, inside), 0, 1e-9, source)
+	}
+}
+
+// apart is the greatest difference between the matrices of a beam and of fields.
+func apart(l beam, es []field) (most float64) {
+	a, b := along(l.a.mgl(), 1), along(l.b.mgl(), 1)
+	aa, bb, ab := complex((l.i+l.q)/2, 0), complex((l.i-l.q)/2, 0), complex(l.u/2, l.v/2)
+	for i := range 3 {
+		for j := range 3 {
+			m := aa*a[i]*a[j] + bb*b[i]*b[j] + ab*a[i]*b[j] + cmplx.Conj(ab)*b[i]*a[j]
+			for _, e := range es {
+				m -= e[i] * cmplx.Conj(e[j])
+			}
+			most = max(most, cmplx.Abs(m))
+		}
+	}
+	return most
 }

@@ -1,6 +1,7 @@
 package trace
 
 import (
+	"fmt"
 	"math"
 	"math/rand/v2"
 	"testing"
@@ -89,11 +90,8 @@ func TestBoxTraps(t *testing.T) {
 			}
 		}
 		p := row.trapped
-		z := (float64(trapped)/rays - p) / math.Sqrt(p*(1-p)/rays)
 		// Three rows, two-sided, at a level of 0.001 altogether.
-		if math.Abs(z) > 3.6 {
-			t.Errorf("n %v: %d of %d trapped, z = %.2f against 3 cos C - 2 = %v", row.n, trapped, rays, z, p)
-		}
+		agree(t, fmt.Sprintf("trapped in a box of index %v", row.n), float64(trapped)/rays, math.Sqrt(p*(1-p)/rays), p, 0, 3.6, "3 cos C - 2, all directions alike")
 	}
 }
 

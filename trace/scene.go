@@ -20,12 +20,14 @@ type Scene struct {
 	// Axis is the direction of the optic axis in the stone's frame, of any length but 0.
 	// It counts for a uniaxial material, which then refracts doubly: both waves are
 	// followed, each along its own ray. The phase between the two is forgotten once they
-	// have parted, as it is lost in any picture wider than a hair of a stone thicker than
-	// some wavelengths over its birefringence; light close along the axis keeps it longer,
-	// and that is not modelled. With nil a uniaxial stone is traced as if singly
-	// refracting, at its ordinary index. Biaxial materials, which have two axes, are
-	// not followed doubly: an axis is refused for them. An isotropic one has none, and
-	// any axis leaves it as it is.
+	// have parted: over a pixel and over the spectrum it runs through many turns in a
+	// stone that is thicker than a few wavelengths over its birefringence. Light close
+	// along the axis keeps it longer, and quartz turns the polarisation of such light;
+	// neither is modelled.
+	//
+	// With nil a uniaxial stone is traced as if singly refracting, at its ordinary index.
+	// Biaxial materials, which have two axes, are not followed doubly: an axis is refused
+	// for them. An isotropic one has none, and any axis leaves it as it is.
 	Axis *mgl64.Vec3
 
 	Surroundings []Surrounding // one column each

@@ -5,6 +5,8 @@ import (
 	"math/rand/v2"
 	"testing"
 
+	"github.com/go-gl/mathgl/mgl64"
+
 	"pavilight/facets"
 	"pavilight/gems"
 )
@@ -139,4 +141,48 @@ func TestGround(t *testing.T) {
 			near(t, name+": sum in a setting", set.Sum(), 1, 1e-9, "light is neither made nor lost")
 		}
 	}
+}
+
+// TestDishBends sends a slanting ray through a liquid's surface into a block of the same
+// index: its way to the sloping face below is that of the bent ray.
+func TestDishBends(t *testing.T) {
+	const slope = 20 * facets.Degree
+	liquid := plain(t, "liquid", 1.477)
+	tr := general(t, block(t, slope, 0, 2), View{}, liquid, false)
+	tr.dish = &dish{liquid, 1.5}
+	at := at550(tr, liquid)
+	x := tr.body.relative(mgl64.Vec3{0, 0.1, 0})
+	for _, degree := range []float64{-40, 5, 30, 60} {
+		sin, cos := math.Sincos(degree * math.Pi / 180)
+		var b sums
+		l := tr.send(0, x, vec{sin, 0, -cos}, at, 0, &b)
+		r := Fresnel(1, 1.477, cos).Mean()
+		near(t, "goes through", l.Leaked, 1-r, 1e-12, "Fresnel's equations at the liquid's surface")
+		bent := math.Asin(math.Abs(sin) / 1.477)
+		near(t, "way in the block", b[pathLength]/l.Leaked*tr.body.unit, math.Sin(slope.Radians())/math.Cos(bent-slope.Radians()), 1e-9,
+			"Snell's law, and the distance of the face below")
+	}
+}
+
+// TestLambert draws directions from a diffuse surface.
+func TestLambert(t *testing.T) {
+	const source = "Lambert's cosine law: means of the cosine and its square"
+	j := &journey{}
+	rng := rand.New(rand.NewPCG(8, 2))
+	const throws = 20000
+	n := unit(rng)
+	var first, second float64
+	var along vec
+	for i := range throws {
+		j.dice = dice(mix(uint64(i)))
+		d := j.lambert(n)
+		near(t, "length", d.length(), 1, 1e-12, "a direction")
+		c := d.dot(n)
+		first, second = first+c/throws, second+c*c/throws
+		along = along.plus(1.0/throws, d)
+	}
+	// Variances 1/18 and 1/12 of the cosine and its square, 1/4 of each part across.
+	agree(t, "mean cosine", first, math.Sqrt(1.0/18/throws), 2.0/3, 0, 4, source)
+	agree(t, "mean square of the cosine", second, math.Sqrt(1.0/12/throws), 0.5, 0, 4, source)
+	agree(t, "mean direction aside", along.plus(-along.dot(n), n).length(), math.Sqrt(0.5/throws), 0, 0, 4, "the same all round")
 }
