@@ -235,6 +235,7 @@ func alikeRows(a, b string) bool {
 // rowsOf returns the rows that a page has, of long forms or of others.
 func rowsOf(page string, longForms bool) (rows []line) {
 	file := ""
+	page, _, _ = strings.Cut(page, mutationsHeading)
 	for _, text := range strings.Split(page, "\n") {
 		if name := strings.Trim(text, "`"); strings.HasSuffix(name, "_test.go") {
 			file = name
