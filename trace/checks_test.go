@@ -52,7 +52,8 @@ type row struct {
 }
 
 // note takes a comparison into the page. allowed is how far got may lie from want.
-func (r *recorder) note(t *testing.T, what string, got, want, allowed float64, words, source string, measured bool) {
+func (r *recorder) note(t *testing.T, what string, got, want, allowed float64, words, source string,
+	measured bool) {
 	if i := strings.LastIndex(what, ": "); i >= 0 {
 		what = what[i+2:] // what stands before names the stone or the row
 	}
@@ -63,7 +64,8 @@ func (r *recorder) note(t *testing.T, what string, got, want, allowed float64, w
 	defer r.mutex.Unlock()
 	w := r.rows[key]
 	if w == nil {
-		w = &row{file: caller(), least: math.Inf(1), most: math.Inf(-1), worst: -1, allowed: words, measured: measured}
+		w = &row{file: caller(), least: math.Inf(1), most: math.Inf(-1), worst: -1, allowed: words,
+			measured: measured}
 		r.rows[key] = w
 	}
 	w.times++
@@ -80,7 +82,8 @@ func (r *recorder) note(t *testing.T, what string, got, want, allowed float64, w
 func caller() string {
 	for depth := 2; ; depth++ {
 		_, file, _, ok := runtime.Caller(depth)
-		if name := filepath.Base(file); !ok || strings.HasSuffix(name, "_test.go") && name != "checks_test.go" {
+		if name := filepath.Base(file); !ok || strings.HasSuffix(name, "_test.go") &&
+			name != "checks_test.go" {
 			return name
 		}
 	}
@@ -101,7 +104,8 @@ func near(t *testing.T, what string, got, want, tolerance float64, source string
 func agree(t *testing.T, what string, got, gotError, want, wantError, errors float64, source string) {
 	t.Helper()
 	joint := math.Hypot(gotError, wantError)
-	checks.note(t, what, got, want, errors*joint, fmt.Sprintf("%g standard errors", errors), source, wantError > 0)
+	checks.note(t, what, got, want, errors*joint, fmt.Sprintf("%g standard errors", errors), source,
+		wantError > 0)
 	if !(math.Abs(got-want) <= errors*joint) {
 		t.Errorf("%s: got %.6g ± %.1g, want %.6g ± %.1g, %.1f standard errors apart (%s)",
 			what, got, gotError, want, wantError, math.Abs(got-want)/joint, source)
@@ -115,7 +119,8 @@ type estimate struct{ mean, error float64 }
 func above(t *testing.T, what string, more, less estimate, errors float64, source string) {
 	t.Helper()
 	joint := math.Hypot(more.error, less.error)
-	checks.note(t, what, more.mean, less.mean, math.Inf(1), fmt.Sprintf("more by %g standard errors", errors), source, true)
+	checks.note(t, what, more.mean, less.mean, math.Inf(1), fmt.Sprintf("more by %g standard errors", errors),
+		source, true)
 	if !(more.mean-less.mean > errors*joint) {
 		t.Errorf("%s: %.5g ± %.1g is not more than %.5g ± %.1g, %.1f standard errors apart (%s)",
 			what, more.mean, more.error, less.mean, less.error, (more.mean-less.mean)/joint, source)
@@ -190,14 +195,17 @@ func (r *recorder) settle() error {
 		was, ok := have[check(l.text)]
 		switch {
 		case !ok:
-			return fmt.Errorf("%s is stale: it lacks the check %s; run go test ./trace -update", checksPage, check(l.text))
+			return fmt.Errorf("%s is stale: it lacks the check %s; run go test ./trace -update", checksPage,
+				check(l.text))
 		case !alikeRows(was, l.text):
-			return fmt.Errorf("%s is stale:\n%s\nis now\n%s\nrun go test ./trace -update", checksPage, was, l.text)
+			return fmt.Errorf("%s is stale:\n%s\nis now\n%s\nrun go test ./trace -update", checksPage, was,
+				l.text)
 		}
 		delete(have, check(l.text))
 	}
 	for c := range have {
-		return fmt.Errorf("%s is stale: the check %s is not made any more; run go test ./trace -update", checksPage, c)
+		return fmt.Errorf("%s is stale: the check %s is not made any more; run go test ./trace -update",
+			checksPage, c)
 	}
 	return nil
 }
@@ -264,7 +272,8 @@ type line struct{ file, text string }
 // lines returns the rows in the page's order.
 func (r *recorder) lines() (all []line) {
 	keys := slices.SortedFunc(maps.Keys(r.rows), func(a, b rowKey) int {
-		return cmp.Or(cmp.Compare(a.test, b.test), cmp.Compare(a.what, b.what), cmp.Compare(a.source, b.source))
+		return cmp.Or(cmp.Compare(a.test, b.test), cmp.Compare(a.what, b.what),
+			cmp.Compare(a.source, b.source))
 	})
 	for _, k := range keys {
 		w := r.rows[k]
@@ -282,8 +291,9 @@ func (r *recorder) lines() (all []line) {
 		if w.times > 1 && w.least != w.most {
 			got = fmt.Sprintf("%.6g for %.6g", w.got, w.want)
 		}
-		all = append(all, line{w.file, fmt.Sprintf("| `%s` %s | %s | %s | %s | %.1e | %s | %d |",
-			strings.TrimPrefix(k.test, "Test"), oneCell(k.what), oneCell(k.source), expected, got, math.Abs(w.got-w.want), w.allowed, w.times)})
+		check := fmt.Sprintf("| `%s` %s | %s |", strings.TrimPrefix(k.test, "Test"), oneCell(k.what), oneCell(k.source))
+		all = append(all, line{w.file, fmt.Sprintf("%s %s | %s | %.1e | %s | %d |",
+			check, expected, got, math.Abs(w.got-w.want), w.allowed, w.times)})
 	}
 	return all
 }
@@ -296,7 +306,9 @@ func oneCell(s string) string {
 const (
 	measuredMark     = "≈ "
 	mutationsHeading = "## Mutations"
-	longForm         = "(long form)" // ends the words of a check that only -long makes
+	tableHead        = "| check | source | expected | got | error | allowed | times |\n" +
+		"|---|---|---|---|---|---|---|\n"
+	longForm = "(long form)" // ends the words of a check that only -long makes
 )
 
 // section returns a heading's part of the page, up to the next, or nothing.
@@ -349,7 +361,7 @@ of gems and facets.
 				continue
 			}
 			if head {
-				fmt.Fprintf(&b, "## %s\n\n`%s`\n\n| check | source | expected | got | error | allowed | times |\n|---|---|---|---|---|---|---|\n", title(f), f)
+				fmt.Fprintf(&b, "## %s\n\n`%s`\n\n%s", title(f), f, tableHead)
 				head = false
 			}
 			b.WriteString(l.text + "\n")

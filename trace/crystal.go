@@ -270,7 +270,8 @@ func (c *crystal) outside(l *beam, d, v vec, m float64) entering {
 	s, q := both(rss, rsp), both(rps, rpp)
 	// <Es Ep*> of what is mirrored.
 	conj := cmplx.Conj
-	x := rss*conj(rps)*complex(ss, 0) + rsp*conj(rpp)*complex(pp, 0) + rss*conj(rpp)*sp + rsp*conj(rps)*conj(sp)
+	x := rss*conj(rps)*complex(ss, 0) + rsp*conj(rpp)*complex(pp,
+		0) + rss*conj(rpp)*sp + rsp*conj(rps)*conj(sp)
 	r.mirrored = beam{
 		i: s + q, q: s - q, u: 2 * real(x), v: 2 * imag(x),
 		a: f.s, b: f.t.scale(-z/m).plus(-f.size/m, f.v),

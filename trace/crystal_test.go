@@ -43,7 +43,8 @@ func TestWalkOff(t *testing.T) {
 	}{
 		{"calcite, the greatest", calciteO, calciteE, 41.865, 6.2695, 5e-5, source + ghosh},
 		{"calcite at 45", calciteO, calciteE, 45, 6.2323, 5e-5, source + ghosh},
-		{"calcite, cleavage rhomb", calciteO, calciteE, 44.61, 6.241, 5e-4, source + ghosh + "; angle of the axis from memory"},
+		{"calcite, cleavage rhomb", calciteO, calciteE, 44.61, 6.241, 5e-4,
+			source + ghosh + "; angle of the axis from memory"},
 		{"zircon", 1.925, 1.984, 45.86, 1.729, 5e-4, source + "handbooks"},
 		{"rutile", 2.61291, 2.90865, 48.07, 6.132, 5e-4, source + "DeVore, J. Opt. Soc. Am. 41 (1951) 416"},
 		{"quartz", 1.54421, 1.55331, 45.17, 0.337, 5e-4, source + "Ghosh 1999"},
@@ -82,10 +83,12 @@ func TestCalcitePlate(t *testing.T) {
 		k, s := b.exit(start, w.ray)
 		at[i] = fromMgl(b.place(start.plus(s, w.ray)))
 		out := c.inside(w.k, w.extra, b.normal[k], 1)
-		near(t, "direction beyond the plate", out.out.plus(-1, down).length(), 0, 1e-12, "both faces parallel")
+		near(t, "direction beyond the plate", out.out.plus(-1, down).length(), 0, 1e-12,
+			"both faces parallel")
 	}
 	near(t, "ordinary ray stays", at[0].x-1, 0, 1e-12, "normal incidence")
-	near(t, "extraordinary ray shifts, mm", math.Abs(at[1].x-at[0].x), 1.0920, 5e-5, "10 mm times the tangent of 6.2323°; "+ghosh)
+	near(t, "extraordinary ray shifts, mm", math.Abs(at[1].x-at[0].x), 1.0920, 5e-5,
+		"10 mm times the tangent of 6.2323°; "+ghosh)
 	near(t, "and not aside", at[1].y-at[0].y, 0, 1e-12, "the ray stays in the plane of wave vector and axis")
 }
 
@@ -103,7 +106,8 @@ func TestAxisAcross(t *testing.T) {
 	// The ordinary field lies across the axis, in the plane: p. The other is s.
 	p, s := Fresnel(1, calciteO, cos), Fresnel(1, calciteE, cos)
 	near(t, "power of the ordinary wave", in.power[0], (1-p.Rp)/2, 1e-14, "Fresnel's equation for p at no")
-	near(t, "power of the extraordinary wave", in.power[1], (1-s.Rs)/2, 1e-14, "Fresnel's equation for s at ne")
+	near(t, "power of the extraordinary wave", in.power[1], (1-s.Rs)/2, 1e-14,
+		"Fresnel's equation for s at ne")
 	near(t, "mirrored", in.mirrored.i, (p.Rp+s.Rs)/2, 1e-14, "Fresnel's equations")
 	near(t, "polarisation of what is mirrored", in.mirrored.q, (s.Rs-p.Rp)/2, 1e-14, "Fresnel's equations")
 
@@ -140,7 +144,8 @@ func TestCrystalKeepsAllLight(t *testing.T) {
 		l := polarised(rng, d)
 		e := c.outside(&l, d, v, m)
 		near(t, "from outside", e.mirrored.i+e.power[0]+e.power[1], 1, 1e-11, source)
-		near(t, "what is mirrored stays polarised", math.Hypot(e.mirrored.q, math.Hypot(e.mirrored.u, e.mirrored.v)), e.mirrored.i, 1e-11,
+		near(t, "what is mirrored stays polarised", math.Hypot(e.mirrored.q,
+			math.Hypot(e.mirrored.u, e.mirrored.v)), e.mirrored.i, 1e-11,
 			"a mirror does not depolarise")
 		for i, w := range e.waves {
 			if e.power[i] == 0 {
@@ -309,7 +314,8 @@ func TestAgainstBerreman(t *testing.T) {
 			}
 		}
 		for i := range z {
-			if math.Abs(imag(z[i])) > 1e-7 && imag(z[i]) < 0 || math.Abs(imag(z[i])) <= 1e-7 && flux(fields[i]) < 0 {
+			if math.Abs(imag(z[i])) > 1e-7 && imag(z[i]) < 0 || math.Abs(imag(z[i])) <= 1e-7 &&
+				flux(fields[i]) < 0 {
 				back = append(back, i)
 			}
 		}
@@ -336,8 +342,10 @@ func TestAgainstBerreman(t *testing.T) {
 			continue // eigenvectors of like eigenvalues are uncertain
 		}
 		tried++
-		near(t, "through, s and p", got.through.i, (flux(s)*square(x[2])+flux(p)*square(x[3]))/in, 1e-6, source)
-		near(t, "through, s less p", got.through.q, (flux(s)*square(x[2])-flux(p)*square(x[3]))/in, 1e-6, source)
+		near(t, "through, s and p", got.through.i, (flux(s)*square(x[2])+flux(p)*square(x[3]))/in, 1e-6,
+			source)
+		near(t, "through, s less p", got.through.q, (flux(s)*square(x[2])-flux(p)*square(x[3]))/in, 1e-6,
+			source)
 		if real(zm) > 0 {
 			sp := x[2] * cmplx.Conj(x[3]) * zm / complex(in, 0)
 			near(t, "through, phase", cmplx.Abs(complex(got.through.u, got.through.v)-2*sp), 0, 1e-6, source)

@@ -71,7 +71,8 @@ func TestHardingCritical(t *testing.T) {
 	} {
 		roof := func(p float64) *facets.Stone { return block(t, facets.Angle(p)*facets.Degree, 0, 2) }
 		// Dead centre: straight down, the first face is met at its slope.
-		near(t, "slope at which a dead centre ends", edgeOf(15, 60, func(p float64) bool { return into(t, roof(p), 0, 0.4, row.r).Bounces[0].Total }),
+		near(t, "slope at which a dead centre ends", edgeOf(15, 60,
+			func(p float64) bool { return into(t, roof(p), 0, 0.4, row.r).Bounces[0].Total }),
 			row.c, 6e-4, harding+": P < C is a dead centre, C worked out")
 		// The ray that runs symmetrically, in and out 5 degrees from the axis.
 		for _, p := range []float64{row.low, row.high} {
@@ -83,12 +84,14 @@ func TestHardingCritical(t *testing.T) {
 			if len(path.Bounces) < 3 || !path.Bounces[0].Total && row.r > 1.46 {
 				t.Fatalf("R %v, P %v: the ray is not reflected twice: %+v", row.r, p, path.Bounces)
 			}
-			near(t, "divergence of table-to-table rays at the limits of the head's shadow", path.Bounces[2].FromEye.Degrees(), 10, 0.01,
+			near(t, "divergence of table-to-table rays at the limits of the head's shadow",
+				path.Bounces[2].FromEye.Degrees(), 10, 0.01,
 				harding+": sin(D'/2) = R sin(D/2), worked out")
 		}
 		// One eye 6 degrees from the axis sees the first face exactly at its critical angle.
 		path := into(t, roof(row.live), -6, 0.4, row.r)
-		near(t, "least incidence under a live centre", path.Bounces[0].Incidence.Degrees(), row.c, 0.01, harding+": sin 6° = R sin(P - C), worked out")
+		near(t, "least incidence under a live centre", path.Bounces[0].Incidence.Degrees(), row.c, 0.01,
+			harding+": sin 6° = R sin(P - C), worked out")
 	}
 }
 
@@ -113,13 +116,15 @@ func TestHardingLargestRay(t *testing.T) {
 	second := func(tilt float64) Bounce { return into(t, s, tilt, 0.75, r).Bounces[1] }
 	tilt := edgeOf(20, 50, func(tilt float64) bool { return second(tilt).Incidence.Degrees() < c })
 	first := into(t, s, tilt, 0.75, r)
-	if first.Bounces[0].Facet == first.Bounces[1].Facet || s.Facets[first.Bounces[1].Facet].Side != facets.Pavilion {
+	if first.Bounces[0].Facet == first.Bounces[1].Facet ||
+		s.Facets[first.Bounces[1].Facet].Side != facets.Pavilion {
 		t.Fatalf("the ray must meet both faces below: %+v", first.Bounces[:2])
 	}
 	// Its angle inside from the axis, between entry and first bounce.
 	in := first.Bounces[0].At.Sub(first.Entry).Normalize()
 	theta := math.Acos(-in[2]) * 180 / math.Pi
-	near(t, "largest ray, printed", theta, 33.32, 0.015, "Harding, Diamond Design Revisited: 33.32° for 40.75°")
+	near(t, "largest ray, printed", theta, 33.32, 0.015,
+		"Harding, Diamond Design Revisited: 33.32° for 40.75°")
 	near(t, "largest ray", theta, 33.310, 2e-3, harding+": 180 - C - 3P, worked out")
 }
 
@@ -151,16 +156,22 @@ func TestHardingTables(t *testing.T) {
 		const grazing = 89.7 // degrees; the sine differs from 1 by 1.4e-5, and light still gets in
 		largest := edgeOf(0.2, 0.99, func(table float64) bool { return beyond(table, grazing, table-hair) })
 		smallest := edgeOf(0.2, 0.99, func(table float64) bool { return beyond(table, 0, table+hair) })
-		near(t, "largest table", largest, row.largest, 6e-5, harding+": tan C (tan P + tan B)/(tan C tan B + 1), worked out")
-		near(t, "smallest table", smallest, row.smallest, 6e-5, harding+": tan θ (tan P + tan B)/(tan θ tan B + 1), sin B = R sin(B - θ), worked out")
+		near(t, "largest table", largest, row.largest, 6e-5,
+			harding+": tan C (tan P + tan B)/(tan C tan B + 1), worked out")
+		near(t, "smallest table", smallest, row.smallest, 6e-5,
+			harding+": tan θ (tan P + tan B)/(tan θ tan B + 1), sin B = R sin(B - θ), worked out")
 		if row.printed > 0 {
-			near(t, "largest table for diamond, printed", largest, row.printed, row.printedWithin, harding+": 53 %")
+			near(t, "largest table for diamond, printed", largest, row.printed, row.printedWithin,
+				harding+": 53 %")
 		}
 	}
 	// Without a bezel the ray that grazes meets the culet at a share of the width.
 	s := block(t, 40.75*facets.Degree, 0, 2)
-	far := edgeOf(0.1, 0.9, func(x float64) bool { return s.Facets[into(t, s, 89.7, x, 2.417).Bounces[0].Facet].Normal[0] > 0 })
-	near(t, "largest table without a bezel, printed", far, 0.392, 6e-4, "Harding, Diamond Design Revisited: 0.392")
+	far := edgeOf(0.1, 0.9, func(x float64) bool {
+		return s.Facets[into(t, s, 89.7, x, 2.417).Bounces[0].Facet].Normal[0] > 0
+	})
+	near(t, "largest table without a bezel, printed", far, 0.392, 6e-4,
+		"Harding, Diamond Design Revisited: 0.392")
 	near(t, "largest table without a bezel", far, 0.3916, 6e-5, harding+": tan C tan P, worked out")
 }
 
@@ -179,7 +190,8 @@ func TestHardingBezel(t *testing.T) {
 				continue
 			}
 			found = true
-			near(t, "table-to-bezel ray outside", path.Bounces[2].FromEye.Degrees(), math.Abs(phi), 1e-6, harding+": sin(B - φ) = R sin(B - D)")
+			near(t, "table-to-bezel ray outside", path.Bounces[2].FromEye.Degrees(), math.Abs(phi), 1e-6,
+				harding+": sin(B - φ) = R sin(B - D)")
 		}
 		if !found {
 			t.Errorf("R %v: no ray goes from the table to the bezel", row.r)

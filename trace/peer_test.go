@@ -12,14 +12,16 @@ import (
 
 // cut adds facets at the angle from the girdle plane and at azimuths in degrees, all at
 // one distance from the origin.
-func cut(planes []facets.Plane, side facets.Side, angle, distance float64, azimuths ...float64) []facets.Plane {
+func cut(planes []facets.Plane, side facets.Side, angle, distance float64,
+	azimuths ...float64) []facets.Plane {
 	sin, cos := math.Sincos(angle * math.Pi / 180)
 	if side == facets.Pavilion {
 		cos = -cos
 	}
 	for _, a := range azimuths {
 		y, x := math.Sincos(a * math.Pi / 180)
-		planes = append(planes, facets.Plane{Normal: mgl64.Vec3{sin * x, sin * y, cos}.Normalize(), Distance: distance, Side: side})
+		planes = append(planes, facets.Plane{Normal: mgl64.Vec3{sin * x, sin * y, cos}.Normalize(),
+			Distance: distance, Side: side})
 	}
 	return planes
 }
@@ -80,7 +82,8 @@ func TestPathTracer(t *testing.T) {
 				x, y := -1+half*float64(2*i+1), -1+half*float64(2*j+1)
 				in := true
 				for _, f := range row.stone.Facets {
-					if n := f.Normal; f.Side == facets.Girdle && n[0]*x+n[1]*y+half*(math.Abs(n[0])+math.Abs(n[1])) > f.Distance+1e-9 {
+					if n := f.Normal; f.Side == facets.Girdle &&
+						n[0]*x+n[1]*y+half*(math.Abs(n[0])+math.Abs(n[1])) > f.Distance+1e-9 {
 						in = false
 					}
 				}
@@ -103,7 +106,8 @@ func TestPathTracer(t *testing.T) {
 			for i := r % stride; i < len(pixel); i += stride {
 				p := pixel[i]
 				rays++
-				from := tr.body.relative(mgl64.Vec3{p[0] + half*(2*rng.Float64()-1), p[1] + half*(2*rng.Float64()-1), 3})
+				from := tr.body.relative(mgl64.Vec3{p[0] + half*(2*rng.Float64()-1),
+					p[1] + half*(2*rng.Float64()-1), 3})
 				facet, s, ok := tr.body.entry(from, vec{0, 0, -1})
 				if !ok {
 					t.Fatalf("%s: a ray passes beside", row.name)

@@ -240,7 +240,8 @@ func TestReciprocity(t *testing.T) {
 			}
 			if facet, far, ok := tr.body.entry(x, through); ok {
 				var none sums
-				add[0] += share * tr.send(facet, x.plus(far, through), d, at, dice(rng.Uint32()), &none).Returned
+				add[0] += share * tr.send(facet, x.plus(far, through), d, at, dice(rng.Uint32()),
+					&none).Returned
 			}
 		})[0]
 
@@ -263,14 +264,16 @@ func TestReciprocity(t *testing.T) {
 		})[0]
 		k := (1 - row.light) / (1 - cosCone) // solid angles
 		seen.mean, seen.error = seen.mean*k, seen.error*k
-		agree(t, row.name+", light into 2° about the eye"+words, seen.mean, seen.error, back.mean, back.error, 4, source)
+		agree(t, row.name+", light into 2° about the eye"+words, seen.mean, seen.error, back.mean, back.error,
+			4, source)
 		if joint := math.Hypot(seen.error, back.error); *long && joint > 0.005*back.mean {
 			t.Errorf("%s: the joint error is %.2g of %.4g: not 0.5 %% or better", row.name, joint, back.mean)
 		}
 		if row.dish {
 			wrong := 1 / (row.m * row.m)
 			if math.Abs(seen.mean*wrong-back.mean) <= 4*math.Hypot(seen.error*wrong, back.error) {
-				t.Errorf("without n² forward gives %.5f, backward %.5f: this check cannot fail", seen.mean*wrong, back.mean)
+				t.Errorf("without n² forward gives %.5f, backward %.5f: this check cannot fail",
+					seen.mean*wrong, back.mean)
 			}
 		}
 	}

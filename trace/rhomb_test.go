@@ -75,7 +75,8 @@ func TestFresnelRhomb(t *testing.T) {
 			near(t, form+": |V| behind one rhomb", math.Abs(one.v), 1, printed, source)
 			near(t, form+": linear part behind one rhomb", math.Hypot(one.q, one.u), 0, printed, source)
 			two := through(one)
-			near(t, form+": U behind two rhombs", two.u*sign(two.a.dot(linear.a)*two.b.dot(linear.b)), -1, printed, source+": a half-wave plate turns it across")
+			near(t, form+": U behind two rhombs", two.u*sign(two.a.dot(linear.a)*two.b.dot(linear.b)), -1,
+				printed, source+": a half-wave plate turns it across")
 			near(t, form+": V behind two rhombs", two.v, 0, 2*printed, source)
 		}
 	}

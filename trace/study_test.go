@@ -14,7 +14,8 @@ import (
 func brilliantOf(t *testing.T, table, crown, pavilion float64) *facets.Stone {
 	t.Helper()
 	p, err := facets.ParseProportions("round",
-		fmt.Sprintf("table=%g,crown=%g,pavilion=%g,star=50,lower=75,girdle=3,culet=0.5", table, crown, pavilion))
+		fmt.Sprintf("table=%g,crown=%g,pavilion=%g,star=50,lower=75,girdle=3,culet=0.5", table, crown,
+			pavilion))
 	if err != nil {
 		t.Fatal(err)
 	}

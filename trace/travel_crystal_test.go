@@ -126,13 +126,15 @@ func TestSmallBirefringence(t *testing.T) {
 		tr.faint = 0
 		axis := unit(rng)
 		for range 6 {
-			facet, at, ok := tr.outline.enter(tr.outline.half*(2*rng.Float64()-1), tr.outline.half*(2*rng.Float64()-1))
+			facet, at, ok := tr.outline.enter(tr.outline.half*(2*rng.Float64()-1),
+				tr.outline.half*(2*rng.Float64()-1))
 			if !ok {
 				continue
 			}
 			rays++
 			x := tr.body.place(at)
-			oracle := doubleSlow{slow: slow{planes: s.Facets, n: 1.7, m: 1.333, eye: tr.outline.eye.mgl(), headCos: 2}, deep: 8, equal: true}
+			oracle := doubleSlow{deep: 8, equal: true,
+				slow: slow{planes: s.Facets, n: 1.7, m: 1.333, eye: tr.outline.eye.mgl(), headCos: 2}}
 			oracle.c.axis = axis
 			want := oracle.enter(facet, x)
 			near(t, "sum", want.Sum(), 1, 1e-9, "light is neither made nor lost")
@@ -154,7 +156,8 @@ func TestSmallBirefringence(t *testing.T) {
 	near(t, "mean difference at birefringence 1e-5", differ[1e-5]/rays, 0, 1e-4, source)
 	near(t, "mean difference at birefringence 1e-7", differ[1e-7]/rays, 0, 1e-6, source)
 	if apart < 1000*differ[1e-7] || rays < 30 {
-		t.Errorf("%v rays: a stone that forgets nothing differs by %g only: this check cannot fail", rays, apart/rays)
+		t.Errorf("%v rays: a stone that forgets nothing differs by %g only: this check cannot fail", rays,
+			apart/rays)
 	}
 }
 
@@ -221,10 +224,12 @@ func TestDoubleScenes(t *testing.T) {
 		for _, f := range s.Facets {
 			tier = f.Tier
 		}
-		scene := Scene{Stone: s, Material: stone, Axis: &mgl64.Vec3{0.3, 0.2, 0.5}, Ground: &Ground{0.5}, Setting: &Setting{0.4, 0.5}}
+		scene := Scene{Stone: s, Material: stone, Axis: &mgl64.Vec3{0.3, 0.2, 0.5}, Ground: &Ground{0.5},
+			Setting: &Setting{0.4, 0.5}}
 		scene.Surroundings = []Surrounding{{Medium: air}, {Medium: water, Dish: true}}
 		if tier != "" {
-			scene.Surroundings = append(scene.Surroundings, Surrounding{Medium: water, Beyond: air, Tiers: []string{tier}})
+			scene.Surroundings = append(scene.Surroundings,
+				Surrounding{Medium: water, Beyond: air, Tiers: []string{tier}})
 		}
 		for _, averaged := range []bool{false, true} {
 			settings := Settings{Averaged: averaged, Head: 10 * facets.Degree}
@@ -249,9 +254,11 @@ func TestDoubleScenes(t *testing.T) {
 		}
 	}
 	// Seen along the axis, in the exact middle of everything.
-	scene := Scene{Stone: stones(t)["round.toml"], Material: stone, Axis: &mgl64.Vec3{0, 0, 2}, Surroundings: Around(air, plain(t, "dense", 2.4))}
+	scene := Scene{Stone: stones(t)["round.toml"], Material: stone, Axis: &mgl64.Vec3{0, 0, 2},
+		Surroundings: Around(air, plain(t, "dense", 2.4))}
 	for _, c := range mustRun(t, scene, Settings{Wavelength: 550, Pixels: 6, Samples: 4, Below: 1}).Columns {
-		near(t, "uniform surround", c.Lit.Sum+c.Ledger.Unresolved, 1, 1e-9, "a lossless stone in a uniform surround shows the surround")
+		near(t, "uniform surround", c.Lit.Sum+c.Ledger.Unresolved, 1, 1e-9,
+			"a lossless stone in a uniform surround shows the surround")
 		near(t, "unresolved", c.Ledger.Unresolved, 0, 1e-6, "a brilliant lets its light go")
 	}
 }
@@ -263,7 +270,8 @@ func TestDichroism(t *testing.T) {
 	const ordinary, extraordinary = 3.0, 0.1 // per mm
 	s := solid(t, box(200, 200, 0.5))        // 1 mm thick
 	m := uniaxial(t, "tourmaline", 1.64, 1.62)
-	m.Absorption = &gems.Absorption{Wavelengths: []gems.Wavelength{400}, Ordinary: []float64{ordinary}, Extraordinary: []float64{extraordinary}}
+	m.Absorption = &gems.Absorption{Wavelengths: []gems.Wavelength{400}, Ordinary: []float64{ordinary},
+		Extraordinary: []float64{extraordinary}}
 	through := func(axis mgl64.Vec3) float64 {
 		r := mustRun(t, Scene{Stone: s, Material: m, Axis: &axis, Surroundings: Around(plain(t, "air", 1))},
 			Settings{Wavelength: 589.3, Pixels: 2, Samples: 1000})
@@ -275,7 +283,8 @@ func TestDichroism(t *testing.T) {
 	}
 	// The end-game throws for what is fainter than 1e-4.
 	near(t, "along the axis", through(mgl64.Vec3{0, 0, 1}), plate(1.64, ordinary), 1e-4, source)
-	near(t, "across the axis", through(mgl64.Vec3{0, 1, 0}), (plate(1.64, ordinary)+plate(1.62, extraordinary))/2, 1e-4, source)
+	near(t, "across the axis", through(mgl64.Vec3{0, 1, 0}),
+		(plate(1.64, ordinary)+plate(1.62, extraordinary))/2, 1e-4, source)
 	if dark, light := through(mgl64.Vec3{0, 0, 1}), through(mgl64.Vec3{1, 0, 0}); dark > light/5 {
 		t.Errorf("a tourmaline dark down its axis must come out dark: %v along, %v across", dark, light)
 	}
@@ -296,7 +305,8 @@ func TestAbsorptionByDirection(t *testing.T) {
 		n := cmplx.Sqrt(1 / (cos2/(o*o) + (1-cos2)/(e*e)))
 		k := d.scale(real(n))
 		// Along the ray a slab's thickness is longer than along the normal.
-		near(t, "per length of the normal", c.absorption(k, true, a, x)/c.ray(k, true).dot(d), imag(n)/small, 1e-6, source)
+		near(t, "per length of the normal", c.absorption(k, true, a, x)/c.ray(k, true).dot(d), imag(n)/small,
+			1e-6, source)
 	}
 }
 
@@ -317,9 +327,12 @@ func TestDoubling(t *testing.T) {
 	const source = "walk-off times depth, over the reading distance of 300 mm; 1 minute of arc is what the eye parts"
 	tilted := vec{math.Sqrt2 / 2, 0, math.Sqrt2 / 2}
 	apart := func(o, e float64) float64 { return doubled(newCrystal(tilted, o, e), 5) / 300 / minute }
-	near(t, "zircon 5 mm deep, minutes", apart(1.925, 1.984), 5*math.Tan(1.729*math.Pi/180)/300/minute, 2e-3, source)
-	if z, c, q := apart(1.925, 1.984), apart(1.76808, 1.76), apart(1.54421, 1.55331); !(z > 1 && c < 1 && q < 1) {
-		t.Errorf("zircon %.2f', corundum %.2f', quartz %.2f': only zircon's edges must be seen double", z, c, q)
+	near(t, "zircon 5 mm deep, minutes", apart(1.925, 1.984), 5*math.Tan(1.729*math.Pi/180)/300/minute, 2e-3,
+		source)
+	z, c, q := apart(1.925, 1.984), apart(1.76808, 1.76), apart(1.54421, 1.55331)
+	if !(z > 1 && c < 1 && q < 1) {
+		t.Errorf("zircon %.2f', corundum %.2f', quartz %.2f': only zircon's edges must be seen double",
+			z, c, q)
 	}
 
 	// In the picture: across the edge the leak falls in two steps, one for each wave.
@@ -327,7 +340,8 @@ func TestDoubling(t *testing.T) {
 	s := solid(t, []facets.Plane{
 		{Normal: mgl64.Vec3{0, 0, 1}, Distance: 0, Side: facets.Table},
 		{Normal: mgl64.Vec3{sin, 0, -cos}, Distance: 5 * cos, Side: facets.Pavilion},
-		{Normal: mgl64.Vec3{-math.Sqrt2 / 2, 0, -math.Sqrt2 / 2}, Distance: 5 * math.Sqrt2 / 2, Side: facets.Pavilion},
+		{Normal: mgl64.Vec3{-math.Sqrt2 / 2, 0, -math.Sqrt2 / 2}, Distance: 5 * math.Sqrt2 / 2,
+			Side: facets.Pavilion},
 		{Normal: mgl64.Vec3{1, 0, 0}, Distance: 8, Side: facets.Girdle},
 		{Normal: mgl64.Vec3{0, 1, 0}, Distance: 4, Side: facets.Girdle},
 		{Normal: mgl64.Vec3{0, -1, 0}, Distance: 4, Side: facets.Girdle},
@@ -338,7 +352,8 @@ func TestDoubling(t *testing.T) {
 	width := 5 * math.Tan(1.729*math.Pi/180)
 	first := func(x float64) float64 { // what leaves where the ray first meets the pavilion
 		j := &journey{traveller: tr, lambda: at, sums: &sums{}}
-		j.land(0, leg{x: tr.body.relative(mgl64.Vec3{x, 0.3, 0}), d: vec{0, 0, -1}, light: fresh(vec{0, 0, -1})})
+		j.land(0, leg{x: tr.body.relative(mgl64.Vec3{x, 0.3, 0}), d: vec{0, 0, -1},
+			light: fresh(vec{0, 0, -1})})
 		for _, l := range j.stack {
 			if l.inside {
 				j.runDouble(l)
@@ -391,7 +406,8 @@ func TestAxisFaults(t *testing.T) {
 	} {
 		s := scene
 		s.Axis, s.Material, s.Coatings = &row.axis, row.stone, row.film
-		if _, err := Run(context.Background(), s, Settings{Wavelength: 550}, nil); err == nil || !strings.Contains(err.Error(), row.want) {
+		if _, err := Run(context.Background(), s, Settings{Wavelength: 550}, nil); err == nil ||
+			!strings.Contains(err.Error(), row.want) {
 			t.Errorf("%s: error %v must say %q", row.name, err, row.want)
 		}
 	}
@@ -405,8 +421,10 @@ func TestLimits(t *testing.T) {
 	if len(limits) != 2 {
 		t.Fatalf("%d limits, want 2", len(limits))
 	}
-	near(t, "zircon in air, lower index", limits[0].Critical.Degrees(), 31.30, 5e-3, "asin 1/n, indices of handbooks")
-	near(t, "zircon in air, higher index", limits[1].Critical.Degrees(), 30.27, 5e-3, "asin 1/n, indices of handbooks")
+	near(t, "zircon in air, lower index", limits[0].Critical.Degrees(), 31.30, 5e-3,
+		"asin 1/n, indices of handbooks")
+	near(t, "zircon in air, higher index", limits[1].Critical.Degrees(), 30.27, 5e-3,
+		"asin 1/n, indices of handbooks")
 	scene.Axis = nil
 	if l := untraced(t, scene, Settings{Wavelength: 589.3}).result().Columns[0].Limits; l != nil {
 		t.Errorf("without an axis there must be none: %v", l)
@@ -426,7 +444,8 @@ func untraced(t *testing.T, scene Scene, settings Settings) *run {
 // TestAxisBreaksSymmetry traces one sector of a symmetric stone only where the axis
 // points along the line of sight.
 func TestAxisBreaksSymmetry(t *testing.T) {
-	scene := Scene{Stone: brilliant(t), Material: uniaxial(t, "zircon", 1.925, 1.984), Surroundings: Around(plain(t, "air", 1))}
+	scene := Scene{Stone: brilliant(t), Material: uniaxial(t, "zircon", 1.925, 1.984),
+		Surroundings: Around(plain(t, "air", 1))}
 	for _, row := range []struct {
 		axis   *mgl64.Vec3
 		images int
@@ -450,7 +469,8 @@ func TestFollowTellsOfDoubleRefraction(t *testing.T) {
 			t.Fatal(ok, err)
 		}
 		if p.AsIfSingly != (axis != nil) || p.IndexStone != 1.925 {
-			t.Errorf("axis %v: as if singly refracting is %v at index %v, want %v at the ordinary 1.925", axis, p.AsIfSingly, p.IndexStone, axis != nil)
+			t.Errorf("axis %v: as if singly refracting is %v at index %v, want %v at the ordinary 1.925",
+				axis, p.AsIfSingly, p.IndexStone, axis != nil)
 		}
 	}
 }
