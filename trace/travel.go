@@ -56,7 +56,11 @@ type leg struct {
 	mirror  bool    // only mirrored so far, by the first surface
 	seen    bool    // has met the pavilion
 	bounces int
+	door    int // facet by which it last left the stone; noDoor for one that never was inside
 }
+
+// noDoor stands for the facet where there is none.
+const noDoor = -1
 
 // traveller's indices at one wavelength.
 type lambda struct {
@@ -110,13 +114,22 @@ type journey struct {
 	dice   dice
 	stack  []leg
 	window float64 // what left downward where light first met the pavilion
+	doors  []share // by facet, what left there for good; nil where nobody asks
 }
+
+// share is power by the entry of the ledger that it counts in.
+type share [quantities]float64
 
 // send sends one unit of viewing ray from x, on or outside the stone, along d. at
 // the facet that it meets first. It returns the ledger; what is lit goes into sums.
 func (t *traveller) send(facet int, x, d vec, at *lambda, dice dice, sums *sums) Ledger {
-	j := &journey{traveller: t, lambda: at, sums: sums, dice: dice}
-	first := leg{x: x, d: d, light: fresh(d), mirror: true}
+	return t.sendBy(facet, x, d, at, dice, sums, nil)
+}
+
+// sendBy does what send does and adds to doors, by facet, what left there for good.
+func (t *traveller) sendBy(facet int, x, d vec, at *lambda, dice dice, sums *sums, doors []share) Ledger {
+	j := &journey{traveller: t, lambda: at, sums: sums, dice: dice, doors: doors}
+	first := leg{x: x, d: d, light: fresh(d), mirror: true, door: noDoor}
 	if t.dish != nil {
 		// Down through the liquid's surface, which mirrors its part straight back.
 		up := -d.dot(t.outline.eye)
@@ -124,7 +137,7 @@ func (t *traveller) send(facet int, x, d vec, at *lambda, dice dice, sums *sums)
 		n := t.outline.eye.scale(-1)
 		in := refract(d, n, 1/at.liquid, up, c.cosT)
 		mirrored, through := first.light.meet(&c, d, n, in)
-		j.put(Surface, mirrored.i, d.plus(2*up, t.outline.eye), 0)
+		j.put(Surface, mirrored.i, d.plus(2*up, t.outline.eye), &first)
 		if t.averaged {
 			through.forget()
 		}
@@ -269,6 +282,7 @@ func (j *journey) sees(power float64, out vec) {
 // away lets a leg that has left the stone by facet k go on: the medium is endless,
 // or it is pushed to be followed on.
 func (j *journey) away(k int, l leg) {
+	l.door = k
 	up := l.d.dot(j.outline.eye)
 	if c := j.cup; c != nil && j.body.side[k] == facets.Pavilion && l.x.z > c.opening {
 		// The wall lies right behind the facet and sends its part back into it.
@@ -291,7 +305,7 @@ func (j *journey) count(l leg, d vec) {
 	if !l.mirror {
 		q = j.goes(d.dot(j.outline.eye))
 	}
-	j.put(q, l.light.i, d, l.path)
+	j.put(q, l.light.i, d, &l)
 }
 
 // roam follows a leg outside the stone until it lands, leaves or is swallowed.
@@ -347,7 +361,7 @@ func (j *journey) scatter(l *leg, reflectance float64, n vec) (ok bool) {
 	if l.mirror {
 		q = Surface
 	}
-	j.put(q, kept.i, l.d, l.path)
+	j.put(q, kept.i, l.d, l)
 	if sent.i <= 0 {
 		return false
 	}
@@ -375,9 +389,9 @@ func (j *journey) lose(power float64) {
 	}
 }
 
-// put enters power that leaves along d in the ledger, and in the sums what is seen
-// of it. path is its way inside the stone.
-func (j *journey) put(q Quantity, power float64, d vec, path float64) {
+// put enters power of a leg that leaves along d in the ledger, and in the sums what is
+// seen of it.
+func (j *journey) put(q Quantity, power float64, d vec, l *leg) {
 	if power == 0 {
 		return
 	}
@@ -398,7 +412,10 @@ func (j *journey) put(q Quantity, power float64, d vec, path float64) {
 	if q == Returned || q == Head {
 		j.sums[firstFrom+j.bins.of(up)] += power
 	}
-	j.sums[pathLength] += power * path
+	j.sums[pathLength] += power * l.path
+	if j.doors != nil && l.door != noDoor {
+		j.doors[l.door][q] += power
+	}
 	j.sums[lit] += power * j.seen(d, j.w)
 }
 

@@ -32,6 +32,7 @@ type lookCommand struct {
 	Unpolarised bool    `help:"Average the two polarisations at every facet, instead of tracking the state of the light."`
 	Colour      bool    `help:"Show the stone in true colour under the light too, and measure what an eye makes of it: dark area, contrast, fire, sparkle."`
 	Paths       bool    `help:"Tell the mean way of the light inside the stone."`
+	Tiers       bool    `help:"Tell by which tiers light is returned and leaks, in every surrounding."`
 	Out         string  `type:"word" placeholder:"DIR" help:"Write the maps as pictures into this folder."`
 }
 
@@ -72,6 +73,32 @@ type lookMedium struct {
 	Seconds       float64      `json:"seconds"`
 	PathLengthMM  *float64     `json:"path_length_mm,omitempty"` // only where it was asked for
 	Seen          *lookSeen    `json:"seen,omitempty"`           // likewise
+	Tiers         []lookTier   `json:"tiers,omitempty"`          // likewise
+}
+
+// lookTier is what leaves by the facets of one tier.
+type lookTier struct {
+	Tier          string     `json:"tier"`
+	Side          string     `json:"side"`
+	Returned      float64    `json:"returned"`
+	Head          float64    `json:"head"`
+	Leaked        float64    `json:"leaked"`
+	StandardError tierErrors `json:"standard_error"`
+}
+
+type tierErrors struct {
+	Returned float64 `json:"returned"`
+	Head     float64 `json:"head"`
+	Leaked   float64 `json:"leaked"`
+}
+
+func lookTiers(doors []trace.Door) []lookTier {
+	var tiers []lookTier
+	for _, d := range doors {
+		tiers = append(tiers, lookTier{d.Tier, d.Side.String(), d.Returned, d.Head, d.Leaked,
+			tierErrors{d.ReturnedError, d.HeadError, d.LeakedError}})
+	}
+	return tiers
 }
 
 // lookSeen is what an eye makes of the stone under one light.
@@ -152,6 +179,12 @@ func (l *lookCommand) Run(c call) error {
 		}
 		looks, err = trace.Appear(c, scene, settings, distance, func(done float64) { bar.show(ledgers + (1-ledgers)*done) })
 	}
+	var doors [][]trace.Door
+	for k := 0; err == nil && l.Tiers && k < len(scene.Surroundings); k++ {
+		var d []trace.Door
+		d, err = trace.Doors(c, scene, k, settings)
+		doors = append(doors, d)
+	}
 	bar.clear()
 	if err != nil {
 		var outside *gems.RangeError
@@ -175,6 +208,9 @@ func (l *lookCommand) Run(c call) error {
 		}
 	}
 	report := l.report(s, scene, result, looks)
+	for k := range doors {
+		report.Media[k].Tiers = lookTiers(doors[k])
+	}
 	if folder != nil {
 		if err := folder.write(c, s, report, result, looks); err != nil {
 			return err
@@ -382,6 +418,9 @@ func printLook(w io.Writer, s *subject, scene trace.Scene, r *lookResult, result
 	if looks != nil {
 		printSeen(w, looks, r)
 	}
+	for i := range r.Media {
+		printTiers(w, result.Columns[i].Medium.Name+dishWord(r.Media[i].Arrangement), r.Media[i].Tiers)
+	}
 	rays := float64(result.Rays)
 	fmt.Fprintf(w, "\nShares of one viewing ray, ± the standard error; the first six sum to 1. "+
 		"%s rays in %.2f s.\n", thousands(rays), result.Elapsed.Seconds())
@@ -421,6 +460,21 @@ func printSeen(w io.Writer, looks []trace.Appearance, r *lookResult) {
 	if !first.Light.Small {
 		fmt.Fprintln(w, "Fire tells stones apart only under small lamps (--light lamps).")
 	}
+}
+
+// printTiers prints by which tiers light leaves in one surrounding.
+func printTiers(w io.Writer, around string, tiers []lookTier) {
+	if len(tiers) == 0 {
+		return
+	}
+	fmt.Fprintf(w, "\nBy tier, in %s (by the crown light comes in the other way):\n", around)
+	t := tabwriter.NewWriter(w, 0, 0, 3, ' ', 0)
+	fmt.Fprintln(t, "tier\treturned\thead\tleaked")
+	for _, d := range tiers {
+		fmt.Fprintf(t, "%s\t%s\t%s\t%s\n", d.Tier, withError(d.Returned, d.StandardError.Returned),
+			withError(d.Head, d.StandardError.Head), withError(d.Leaked, d.StandardError.Leaked))
+	}
+	t.Flush()
 }
 
 // thousands writes a count with its unit, to three figures.

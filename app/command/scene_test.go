@@ -67,6 +67,11 @@ func TestScene(t *testing.T) {
 	if room.Lit.Sum == bare.Lit.Sum || !(room.Lit.Sum > 0) {
 		t.Errorf("in a room %v is seen", room.Lit)
 	}
+	var byTier float64
+	for _, tier := range look("--tiers").Tiers {
+		byTier += tier.Leaked
+	}
+	within("leaked by all tiers", byTier, bare.Ledger.Leaked, 5e-3)
 	within("the ledger knows no light", room.Ledger.Leaked, bare.Ledger.Leaked, 1e-3)
 }
 
