@@ -467,7 +467,7 @@ func printTiers(w io.Writer, around string, tiers []lookTier) {
 	if len(tiers) == 0 {
 		return
 	}
-	fmt.Fprintf(w, "\nBy tier, in %s (by the crown light comes in the other way):\n", around)
+	fmt.Fprintf(w, "\nBy tier of the facet where a viewing ray leaves, in %s; the light that is seen came in there:\n", around)
 	t := tabwriter.NewWriter(w, 0, 0, 3, ' ', 0)
 	fmt.Fprintln(t, "tier\treturned\thead\tleaked")
 	for _, d := range tiers {
