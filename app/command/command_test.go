@@ -109,7 +109,6 @@ func TestBadInput(t *testing.T) {
 
 		// The command is at fault.
 		{"an unknown command", []string{"polish"}, CommandFault, []string{"polish", "look", "check", "gems"}},
-		{"a command that is to come", []string{"tell"}, CommandFault, []string{"tell", "does not exist yet"}},
 		{"a plan without a command", []string{"round.toml", "--json"}, CommandFault, []string{"a command must come before"}},
 		{"proportions that are none", []string{"check", "--round", "56"}, CommandFault, []string{"56", "table=56"}},
 		{"an impossible proportion", []string{"check", "--round", "table=56,crown=34,pavilion=400"}, CommandFault,

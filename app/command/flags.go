@@ -25,6 +25,7 @@ type line struct {
 	Check checkCommand `cmd:"" help:"Solve and measure the solid, and report every fault."`
 	Tune  tuneCommand  `cmd:"" help:"Search for better angles, show the goal over two angles, tell what a machine's errors cost, or move a plan to another material."`
 	Cut   cutCommand   `cmd:"" help:"Make the sheet for the bench: steps, drawings, sizes, cautions (PDF)."`
+	Tell  tellCommand  `cmd:"" help:"Make the report for a client: what the light does, in plain words (PDF, HTML, data)."`
 	Gems  gemsCommand  `cmd:"" help:"Print the material table, or all about one material, with sources."`
 }
 
@@ -113,9 +114,6 @@ func knownCommand(args []string, model *kong.Application) error {
 		return nil
 	}
 	known := strings.Join(names, ", ")
-	if slices.Contains([]string{"tell"}, args[first]) {
-		return commandFaultf("%s does not exist yet; the commands are %s", args[first], known)
-	}
 	if isStoneFile(args[first]) {
 		return commandFaultf("a command must come before %s: one of %s", args[first], known)
 	}
