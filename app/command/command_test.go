@@ -223,7 +223,7 @@ func decoded[T any](t *testing.T, args ...string) (value T) {
 func TestLookJSONKeys(t *testing.T) {
 	object := decoded[json.RawMessage](t, quick("look")...)
 	wantKeys(t, "look", object, "plan", "material", "body_colour", "width_mm", "view", "light", "head_deg",
-		"wavelength_nm", "polarisation", "media")
+		"wavelength_nm", "polarisation", "kernel", "media")
 	var parts struct {
 		View  json.RawMessage
 		Media []json.RawMessage

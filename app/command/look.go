@@ -47,6 +47,7 @@ type lookResult struct {
 	HeadDeg      float64      `json:"head_deg"`
 	WavelengthNM *float64     `json:"wavelength_nm"` // null for the spectrum
 	Polarisation string       `json:"polarisation"`
+	Kernel       string       `json:"kernel"` // form of arithmetic of clean facets in one medium
 	Media        []lookMedium `json:"media"`
 }
 
@@ -272,6 +273,7 @@ func (l *lookCommand) report(s *subject, scene trace.Scene, result *trace.Result
 	report := &lookResult{
 		Plan:         s.name,
 		Material:     s.material.Key,
+		Kernel:       trace.Kernel(),
 		BodyColour:   scene.Material.Describe().BodyColour,
 		WidthMM:      s.measures.WidthMM,
 		View:         lookView{TiltDeg: l.Tilt, TurnDeg: l.Turn},

@@ -11,6 +11,8 @@ import (
 	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
+
+	"pavilight/trace"
 )
 
 // about says what the program is, which versions it runs on and what it is not.
@@ -50,6 +52,7 @@ func versions() string {
 	}
 	lines = append(lines, strings.TrimSpace("Pavilight "+version+" "+revision))
 	lines = append(lines, fmt.Sprintf("%s on %s/%s", runtime.Version(), runtime.GOOS, runtime.GOARCH))
+	lines = append(lines, "light followed in "+trace.Kernel())
 	if ok {
 		for _, d := range info.Deps {
 			switch d.Path {
