@@ -2,152 +2,411 @@ package model
 
 import (
 	"context"
+	"errors"
+	"fmt"
 	"image"
 	"io"
+	"os"
+	"path/filepath"
+	"runtime"
+	"strconv"
+	"strings"
+	"sync"
 
 	"pavilight/app/disk"
+	"pavilight/app/drawing"
 	"pavilight/app/sheet"
 	"pavilight/facets"
 	"pavilight/gems"
 )
 
+// CutWish says how the sheet shall look.
+type CutWish struct {
+	Paper     string // as sheet.Papers names it
+	Machine   string // name of one of the user's machines; empty for the plain one
+	Opposites bool   // indices with the opposite ones first
+	Large     bool   // type a quarter larger
+	Maps      bool   // with the maps and the ledger
+	Gears     []int  // further gears, whose indices are listed too
+	LeaveOut  sheet.LeaveOut
+}
+
 // Cut is the state behind the room where the sheet for the bench is laid out: how it
-// shall look, and its pages as they stand. Its methods run on the window's goroutine.
+// shall look, the page in view as it is printed, and the steps as a film. Its methods run
+// on the window's goroutine. A sheet is first laid out without its maps, at once, and
+// again when they are traced; the newest wish ends what was made for an older one.
 type Cut struct {
-	Paper string // name of the paper, as sheet.Papers names it
-	Large bool   // type a quarter larger
-	Maps  bool   // with the maps and the ledger
+	Wish CutWish
 
 	Running bool
+	Stopped bool // by the user: the sheet is without its maps
 	Done    float64
-	Trouble error
-	Pages   []*image.RGBA // as they are printed; nil before the first
-	Notes   []string      // what the cutter should know before the sheet is printed
+	Trouble error        // why there is no sheet
+	Sheet   *sheet.Sheet // nil before the first
+
+	Page    int         // in view, 0 for the first
+	Picture *image.RGBA // of it, PageWidth pixels wide; nil before the first
+
+	Step     int            // of the film in view: 0 is the rough, 1 the first cut
+	Machines sheet.Machines // the folder of the user's machines
 
 	do       func(func())
 	onChange func()
-	made     *sheet.Sheet
-	number   int
+	subject  cutSubject
+	light    sheet.Job // holds the traced light of the subject; its Light is nil before
+	pages    []*drawing.Page
+	whole    *facets.Stone // what the steps start from
+	number   int           // of the run that counts
 	cancel   context.CancelFunc
-	finished chan struct{}
+
+	width    int // of the picture, pixels
+	painting bool
+	painted  cutView
+	open     sync.WaitGroup // goroutines of all kinds
+}
+
+// cutSubject is what the sheet is of.
+type cutSubject struct {
+	plan     *facets.Plan
+	material *gems.Material
+	around   string // media of the maps, by name
+	media    []*gems.Material
+	head     facets.Angle
+	program  string
+}
+
+func (s cutSubject) same(o cutSubject) bool {
+	return s.plan == o.plan && s.around == o.around && s.head == o.head // a plan names its material
+}
+
+// cutView tells one picture of a page from another.
+type cutView struct {
+	page  *drawing.Page
+	width int
 }
 
 // NewCut returns the state before a sheet was asked for. do hands work to the window's
 // goroutine, in order, without waiting for it; onChange is called there.
-func NewCut(do func(func()), onChange func()) *Cut {
-	return &Cut{Paper: sheet.Papers()[0].Name, Maps: true, do: do, onChange: onChange}
+func NewCut(machines sheet.Machines, do func(func()), onChange func()) *Cut {
+	return &Cut{Wish: CutWish{Paper: sheet.Papers()[0].Name, Maps: true}, Machines: machines, do: do, onChange: onChange}
 }
 
-// pagePerMM is the resolution of the pages on the screen, pixels to the millimetre.
-const pagePerMM = 4
-
-// Make lays the sheet of a plan out, on another goroutine. A sheet that is being made is
-// left.
-func (c *Cut) Make(plan *facets.Plan, material *gems.Material, around []Around, head facets.Angle, program string) {
-	c.Stop()
-	paper, err := sheet.PaperNamed(c.Paper)
-	if err != nil || material == nil {
-		c.Trouble = err
-		c.onChange()
+// SetSubject lays out the sheet of a plan, unless that is what is in view.
+func (c *Cut) SetSubject(plan *facets.Plan, material *gems.Material, around []Around, head facets.Angle, program string) {
+	s := cutSubject{plan: plan, material: material, head: head, program: program}
+	var names []string
+	for _, a := range around {
+		if !a.Dish { // a sheet shows the stone with the medium all around it
+			s.media = append(s.media, a.Medium)
+			names = append(names, a.Medium.Key, a.Medium.Name)
+		}
+	}
+	s.around = strings.Join(names, "\n")
+	if c.subject.plan != nil && s.same(c.subject) {
 		return
 	}
-	job := sheet.Job{
-		Plan: plan, Material: material, Machine: sheet.Plain(), HeadDeg: head.Degrees(),
-		Paper: paper, Large: c.Large, Program: program,
+	if c.subject.plan != plan {
+		c.Page, c.Step = 0, 0
 	}
-	var media []*gems.Material
-	for _, a := range around {
-		media = append(media, a.Medium)
+	c.subject, c.light = s, sheet.Job{}
+	c.make()
+}
+
+// Change takes another wish and lays the sheet out anew.
+func (c *Cut) Change(change func(*CutWish)) {
+	change(&c.Wish)
+	if c.subject.plan != nil {
+		c.make()
 	}
+}
+
+// Again goes on with the maps after Stop.
+func (c *Cut) Again() {
+	if c.Stopped {
+		c.make()
+	}
+}
+
+// ReadGears reads numbers of teeth with commas or spaces between.
+func ReadGears(text string) ([]int, error) {
+	var gears []int
+	for _, word := range strings.FieldsFunc(text, func(r rune) bool { return r == ',' || r == ' ' || r == ';' }) {
+		n, err := strconv.Atoi(word)
+		if err != nil || n < 3 || n > 1000 {
+			return nil, fmt.Errorf("%q is no gear; give numbers of teeth, 3 to 1000, with commas between", word)
+		}
+		gears = append(gears, n)
+	}
+	return gears, nil
+}
+
+// make lays the sheet out on another goroutine, and a sheet that is being made is left.
+func (c *Cut) make() {
+	c.Stop()
 	ctx, cancel := context.WithCancel(context.Background())
 	c.number++
-	number, maps := c.number, c.Maps
-	c.Running, c.Done, c.Trouble, c.cancel, c.finished = true, 0, nil, cancel, make(chan struct{})
-	finished := c.finished
-	go func() {
-		defer close(finished)
+	c.Running, c.Stopped, c.Done, c.Trouble, c.cancel = true, false, 0, nil, cancel
+	r := &cutRun{cut: c, number: c.number, subject: c.subject, wish: c.Wish, machines: c.Machines, light: c.light}
+	c.open.Go(func() {
 		defer cancel()
-		made, pages, err := makeSheet(ctx, &job, maps, media, func(done float64) {
-			c.do(func() {
-				if number == c.number {
-					c.Done = done
-					c.onChange()
-				}
-			})
-		})
-		stopped := ctx.Err() != nil // now: on the way out this goroutine cancels it, too
-		c.do(func() {
-			if number == c.number {
-				c.ended(made, pages, err, stopped)
+		err := r.work(ctx)
+		stopped := ctx.Err() != nil
+		r.hand(func() {
+			c.Running, c.cancel = false, nil
+			c.Stopped = stopped
+			if !stopped && err != nil {
+				c.Trouble, c.Sheet, c.pages, c.Picture = err, nil, nil, nil
 			}
 		})
-	}()
+	})
 	c.onChange()
 }
 
-// makeSheet works a job out and paints its pages.
-func makeSheet(ctx context.Context, job *sheet.Job, maps bool, media []*gems.Material,
-	report func(float64)) (*sheet.Sheet, []*image.RGBA, error) {
-	if maps {
-		if err := sheet.Trace(ctx, job, media, report); err != nil {
-			return nil, nil, err
+// cutRun makes one sheet, on its own goroutine.
+type cutRun struct {
+	cut      *Cut
+	number   int
+	subject  cutSubject
+	wish     CutWish
+	machines sheet.Machines
+	light    sheet.Job
+}
+
+// hand gives the window's goroutine something to do, unless another run counts by then.
+func (r *cutRun) hand(do func()) {
+	r.cut.do(func() {
+		if r.number == r.cut.number {
+			do()
+			r.cut.onChange()
+		}
+	})
+}
+
+func (r *cutRun) work(ctx context.Context) error {
+	s := r.subject
+	job := sheet.Job{Plan: s.plan, Material: s.material, Machine: sheet.Plain(), HeadDeg: s.head.Degrees(),
+		Large: r.wish.Large, Opposites: r.wish.Opposites, Gears: r.wish.Gears, LeaveOut: r.wish.LeaveOut,
+		Program: s.program, Workers: max(1, runtime.GOMAXPROCS(0)-1)}
+	if r.wish.LeaveOut.Any() {
+		job.Copy = pupilsCopy
+	}
+	var err error
+	if job.Paper, err = sheet.PaperNamed(r.wish.Paper); err != nil {
+		return err
+	}
+	if r.wish.Machine != "" {
+		if job.Machine, err = r.machines.Open(r.wish.Machine); err != nil {
+			return err
 		}
 	}
-	made, err := sheet.New(*job)
+	traced := r.light.Light != nil
+	if r.wish.Maps && traced {
+		job.Light, job.Miscuts = r.light.Light, r.light.Miscuts
+	}
+	if err := r.layOut(job); err != nil || !r.wish.Maps || traced || len(s.media) == 0 {
+		return err
+	}
+	if err := sheet.Trace(ctx, &job, s.media, func(done float64) { r.hand(func() { r.cut.Done = done }) }); err != nil {
+		return err
+	}
+	light := job
+	r.hand(func() { r.cut.light = light })
+	return r.layOut(job)
+}
+
+// layOut works a job out and hands its pages over.
+func (r *cutRun) layOut(job sheet.Job) error {
+	made, err := sheet.New(job)
 	if err != nil {
-		return nil, nil, err
+		return err
 	}
-	var pages []*image.RGBA
-	for _, p := range made.Pages() {
-		if ctx.Err() != nil {
-			return nil, nil, context.Cause(ctx)
-		}
-		pages = append(pages, p.Raster(pagePerMM))
+	pages := made.Pages()
+	whole := made.Rough.Stone
+	if whole == nil {
+		whole = made.Solution.Stone.Block(facets.BlockMargin)
 	}
-	return made, pages, nil
+	r.hand(func() {
+		c := r.cut
+		c.Sheet, c.pages, c.whole = made, pages, whole
+		c.Page = max(0, min(c.Page, len(pages)-1))
+		c.Step = max(0, min(c.Step, len(made.Rows)))
+		c.paint()
+	})
+	return nil
 }
 
-func (c *Cut) ended(made *sheet.Sheet, pages []*image.RGBA, err error, stopped bool) {
-	c.Running, c.cancel = false, nil
-	if !stopped {
-		c.Trouble = err
-	}
-	if err == nil {
-		c.made, c.Pages, c.Notes = made, pages, made.Notes()
-	}
-	c.onChange()
-}
-
-// Stop leaves the sheet that is being made. It does not wait; see Wait.
+// Stop leaves the sheet that is being made; what is laid out stays. It does not wait.
 func (c *Cut) Stop() {
 	if c.cancel != nil {
 		c.cancel()
 	}
 }
 
-// Wait returns when the goroutine of the last sheet has ended.
-func (c *Cut) Wait() {
-	if c.finished != nil {
-		<-c.finished
+// Wait returns when all goroutines have ended. Where do waits for the window's goroutine
+// it must not be called there.
+func (c *Cut) Wait() { c.open.Wait() }
+
+// Pages returns how many pages the sheet has, 0 before there is one.
+func (c *Cut) Pages() int { return len(c.pages) }
+
+// Shape returns the height of the page in view over its width.
+func (c *Cut) Shape() float64 {
+	if len(c.pages) == 0 {
+		return 297.0 / 210
+	}
+	p := c.pages[c.Page]
+	return p.Height / p.Width
+}
+
+// Turn brings another page into view; beyond the ends it stays.
+func (c *Cut) Turn(page int) {
+	page = max(0, min(page, len(c.pages)-1))
+	if page != c.Page {
+		c.Page = page
+		c.paint()
+		c.onChange()
 	}
 }
 
-// Ready reports whether there are pages that can be written.
-func (c *Cut) Ready() bool { return c.made != nil && !c.Running && c.Trouble == nil }
+// mostPageWidth bounds the picture of a page, pixels.
+const mostPageWidth = 3000
+
+// SetWidth says how many pixels of the screen the page takes across.
+func (c *Cut) SetWidth(pixels int) {
+	c.width = max(1, min(pixels, mostPageWidth))
+	c.paint()
+}
+
+// paint has the page in view painted on another goroutine, one picture at a time: while
+// one is painted, only the newest wish waits.
+func (c *Cut) paint() {
+	if c.painting || len(c.pages) == 0 || c.width == 0 {
+		return
+	}
+	want := cutView{c.pages[c.Page], c.width}
+	if want == c.painted {
+		return
+	}
+	c.painting = true
+	c.open.Go(func() {
+		img := want.page.Raster(float64(want.width) / want.page.Width)
+		c.do(func() {
+			c.painting = false
+			if len(c.pages) > 0 && c.pages[c.Page] == want.page {
+				c.Picture, c.painted = img, want
+				c.onChange()
+			}
+			c.paint()
+		})
+	})
+}
+
+// Ready reports whether there is a sheet that can be written.
+func (c *Cut) Ready() bool { return c.Sheet != nil && !c.Running && c.Trouble == nil }
+
+// Notes returns what the cutter should know before the sheet is printed.
+func (c *Cut) Notes() []string {
+	if c.Sheet == nil {
+		return nil
+	}
+	notes := c.Sheet.Notes()
+	if c.Stopped && c.Wish.Maps && c.Sheet.Light == nil {
+		notes = append(notes, "stopped: the sheet is without its maps and ledger")
+	}
+	return notes
+}
 
 // FileName suggests a name for the sheet's file.
 func (c *Cut) FileName() string {
-	if c.made == nil {
+	if c.Sheet == nil {
 		return "cut.pdf"
 	}
-	return c.made.FileName() + ".pdf"
+	if c.Sheet.LeaveOut.Any() {
+		return c.Sheet.FileName() + "-pupil.pdf"
+	}
+	return c.Sheet.FileName() + ".pdf"
 }
 
-// Write writes the pages as PDF, as a whole or not at all.
-func (c *Cut) Write(path string) error {
-	document, err := c.made.Document()
+// The copies that are made where parts are left out.
+const (
+	pupilsCopy   = "pupil's copy"
+	teachersCopy = "teacher's copy"
+)
+
+// AnswersName returns the path of the teacher's copy that goes with a pupil's, and false
+// where nothing is left out.
+func (c *Cut) AnswersName(path string) (string, bool) {
+	if c.Sheet == nil || !c.Sheet.LeaveOut.Any() {
+		return "", false
+	}
+	stem, end := strings.TrimSuffix(path, filepath.Ext(path)), filepath.Ext(path)
+	return strings.TrimSuffix(stem, "-pupil") + "-teacher" + end, true
+}
+
+// Write writes the pages as PDF, each file as a whole or not at all, on another goroutine:
+// to path, and where parts are left out the teacher's copy beside it. done is told the
+// files written.
+func (c *Cut) Write(path string, done func(files []string, err error)) {
+	made := c.Sheet
+	teacher, answers := c.AnswersName(path)
+	c.open.Go(func() {
+		var files []string
+		err := writeSheet(made, path)
+		if err == nil {
+			files = append(files, path)
+			if answers {
+				full := *made
+				full.LeaveOut, full.Copy = sheet.LeaveOut{}, teachersCopy
+				if err = writeSheet(&full, teacher); err == nil {
+					files = append(files, teacher)
+				}
+			}
+		}
+		c.do(func() { done(files, err) })
+	})
+}
+
+func writeSheet(made *sheet.Sheet, path string) error {
+	document, err := made.Document()
 	if err != nil {
 		return err
 	}
 	return disk.Replace(path, func(w io.Writer) error { return document.PDF(w) })
+}
+
+// Print writes the sheet into a folder of its own under the system's folder for passing
+// files and has show open it, on another goroutine. done is told the file.
+func (c *Cut) Print(show func(path string) error, done func(path string, err error)) {
+	made, name := c.Sheet, c.FileName()
+	c.open.Go(func() {
+		folder, err := os.MkdirTemp("", "pavilight-print-")
+		path := filepath.Join(folder, name)
+		if err == nil {
+			err = writeSheet(made, path)
+		}
+		if err == nil {
+			err = show(path)
+		}
+		c.do(func() { done(path, err) })
+	})
+}
+
+// NewMachine writes a description to start from for a machine of the user's, and returns
+// its path. It replaces none.
+func (c *Cut) NewMachine(name string) (string, error) {
+	if name == "" || name != filepath.Base(name) || strings.HasPrefix(name, ".") || strings.ContainsAny(name, `/\:*?"<>|`) {
+		return "", fmt.Errorf("%q cannot be the name of a machine, for it names a file; use letters, digits and spaces", name)
+	}
+	if c.Machines == "" {
+		return "", errors.New("the system has no folder for settings; keep the machine's file elsewhere and use pavilight cut --machine FILE")
+	}
+	path := filepath.Join(string(c.Machines), name+".toml")
+	if _, err := os.Stat(path); err == nil {
+		return "", fmt.Errorf("there is a machine named %s already; choose it, or take another name", name)
+	}
+	if err := os.MkdirAll(string(c.Machines), 0o700); err != nil {
+		return "", err
+	}
+	text := strings.Replace(sheet.MachineTemplate, `"my machine"`, strconv.Quote(name), 1)
+	return path, disk.Replace(path, func(w io.Writer) error { _, err := io.WriteString(w, text); return err })
 }

@@ -38,6 +38,7 @@ type Job struct {
 	Copy      string // whose copy it is, as "teacher's copy"; empty for the usual one
 
 	Program string    // the program and its version
+	Workers int       // of Trace; 0 for all cores
 	Date    time.Time // of the PDF; the zero Date is allowed
 }
 

@@ -105,7 +105,13 @@ type Drawing struct {
 // that holds it takes the given share of the shorter edge. The scale is the same in
 // every pose, so a stone that turns does not breathe.
 func Project(stone *facets.Stone, pose Pose, width, height int, share float64) *Drawing {
-	centre, radius := bounds(stone.Corners)
+	return ProjectWithin(stone, stone, pose, width, height, share)
+}
+
+// ProjectWithin is Project with the place and the scale at which it would show whole, so
+// that a stone stays where it is while pieces are cut off it.
+func ProjectWithin(stone, whole *facets.Stone, pose Pose, width, height int, share float64) *Drawing {
+	centre, radius := bounds(whole.Corners)
 	d := &Drawing{
 		stone:  stone,
 		pose:   pose,

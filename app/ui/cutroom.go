@@ -6,7 +6,6 @@ import (
 	"strings"
 
 	"fyne.io/fyne/v2"
-	"fyne.io/fyne/v2/canvas"
 	"fyne.io/fyne/v2/container"
 	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/layout"
@@ -16,107 +15,282 @@ import (
 
 	"pavilight/app/model"
 	"pavilight/app/sheet"
-	"pavilight/facets"
 )
 
 // cutBench is the room where the sheet for the bench is laid out.
 type cutBench struct {
-	cut    *model.Cut
-	of     *facets.Plan // the plan whose sheet is shown or being made
-	box    *fyne.Container
-	pages  *fyne.Container
-	scroll *container.Scroll
-	state  *wrapped
-	write  *widget.Button
-	line   *progressLine
+	cut      *model.Cut
+	box      *fyne.Container
+	doors    [2]*roomButton // pages, film
+	page     *pageView
+	paper    *fyne.Container // page and what goes with it
+	film     *filmView
+	trouble  *fyne.Container
+	troubles *widget.Label
+	back     *widget.Button
+	next     *widget.Button
+	place    *line
+	zoom     *widget.Button
+	bar      *fyne.Container
+	turner   *fyne.Container
+	machine  *chooser
+	gears    *widget.Entry
+	notes    *wrapped
+	write    *widget.Button
+	print    *widget.Button
+	filming  bool
+	last     int // page that was in view
 }
 
 func (w *window) buildCutRoom() fyne.CanvasObject {
 	c := &w.cutting
-	c.cut = model.NewCut(w.do, w.refreshCut)
-	var papers []string
-	for _, p := range sheet.Papers() {
-		papers = append(papers, p.Name)
+	machines, _ := sheet.UserMachines() // without a folder there is the plain machine
+	c.cut = model.NewCut(machines, w.do, w.refreshCut)
+	c.page = newPageView(func(by int) { c.cut.Turn(c.cut.Page + by) }, w.strayKey)
+	c.page.onWidth = c.cut.SetWidth
+	c.film = newFilmView(c.cut, w.do, w.strayKey)
+	for k, name := range []string{"Pages", "Step by step"} {
+		c.doors[k] = newRoomButton(name, func() { w.showFilm(k == 1) })
 	}
-	paper := widget.NewSelect(papers, nil)
-	paper.SetSelected(c.cut.Paper)
-	paper.OnChanged = func(name string) { c.cut.Paper = name; w.makeSheet() }
-	large := widget.NewCheck("Type a quarter larger", func(on bool) { c.cut.Large = on; w.makeSheet() })
-	maps := widget.NewCheck("With maps and ledger", nil)
-	maps.Checked = c.cut.Maps
-	maps.OnChanged = func(on bool) { c.cut.Maps = on; w.makeSheet() }
-	c.write = widget.NewButton("Write the sheet…", w.writeSheet)
-	c.write.Importance = widget.HighImportance
-	c.state = newWrapped(colourDim, theme.SizeNameText)
-	c.line = newProgressLine()
-	heading := newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, "Sheet for the bench").bold()
-	options := container.New(layout.NewCustomPaddedVBoxLayout(8), heading,
-		container.NewBorder(nil, nil, newWord(colourDim, theme.SizeNameText, "Paper"), nil, paper),
-		large, maps, c.write, c.line, container.NewGridWrap(fyne.NewSize(planWide-28, 220), c.state))
-	c.pages = container.New(layout.NewCustomPaddedVBoxLayout(14))
-	c.scroll = container.NewVScroll(container.NewCenter(container.New(layout.NewCustomPaddedLayout(14, 14, 14, 14), c.pages)))
-	c.box = container.New(&sideLayout{width: planWide},
-		pane(container.New(layout.NewCustomPaddedLayout(14, 14, 14, 14), options)),
-		container.NewStack(ground(theme.ColorNameBackground), c.scroll))
+	c.doors[0].setOpen(true)
+	c.back = widget.NewButtonWithIcon("", theme.NavigateBackIcon(), func() { c.cut.Turn(c.cut.Page - 1) })
+	c.next = widget.NewButtonWithIcon("", theme.NavigateNextIcon(), func() { c.cut.Turn(c.cut.Page + 1) })
+	c.place = newWord(colourDim, theme.SizeNameText, "")
+	c.zoom = widget.NewButton("Whole page", func() {
+		c.page.setWhole(!c.page.whole)
+		c.zoom.SetText(map[bool]string{true: "Page width", false: "Whole page"}[c.page.whole])
+	})
+	c.turner = container.NewHBox(c.back, c.place, c.next, gap(8), c.zoom)
+	c.bar = container.NewBorder(nil, nil, container.NewHBox(c.doors[0], c.doors[1]), c.turner)
+	c.troubles = widget.NewLabel("")
+	c.troubles.Wrapping = fyne.TextWrapWord
+	c.troubles.Selectable = true
+	heading := newWord(theme.ColorNameError, theme.SizeNameSubHeadingText, "There is no sheet of this plan").bold()
+	c.trouble = container.NewCenter(container.NewGridWrap(fyne.NewSize(560, 300),
+		container.NewBorder(heading, nil, nil, nil, container.NewVScroll(c.troubles))))
+	c.paper = container.NewStack(ground(theme.ColorNameBackground), c.page.scroll)
+	right := container.NewBorder(pane(container.New(layout.NewCustomPaddedLayout(4, 4, 10, 10), c.bar)), nil, nil, nil,
+		container.NewStack(c.paper, c.film.box, c.trouble))
+	c.box = container.New(&sideLayout{width: planWide}, pane(w.cutWishes()), right)
+	w.showFilm(false)
+	w.refreshCut()
 	return c.box
 }
 
-// enterCut lays the sheet out anew if the plan is another than that on the screen.
-func (w *window) enterCut() {
-	if w.cutting.of != w.bench.Doc.Plan() {
-		w.makeSheet()
+// cutWishes is the pane that says how the sheet shall look.
+func (w *window) cutWishes() fyne.CanvasObject {
+	c := &w.cutting
+	change := func(f func(*model.CutWish)) { c.cut.Change(f) }
+	label := func(s string) fyne.CanvasObject { return newWord(colourDim, theme.SizeNameText, s) }
+	heading := func(s string) fyne.CanvasObject {
+		return newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, s).bold()
 	}
+	var papers []string
+	for _, p := range sheet.Papers() {
+		papers = append(papers, paperWords(p.Name))
+	}
+	paper := widget.NewSelect(papers, nil)
+	paper.SetSelected(papers[0])
+	paper.OnChanged = func(chosen string) {
+		for _, p := range sheet.Papers() {
+			if paperWords(p.Name) == chosen {
+				change(func(w *model.CutWish) { w.Paper = p.Name })
+			}
+		}
+	}
+	orders := []string{"in gear order", "opposites first"}
+	order := widget.NewSelect(orders, nil)
+	order.SetSelected(orders[0])
+	order.OnChanged = func(chosen string) { change(func(w *model.CutWish) { w.Opposites = chosen == orders[1] }) }
+	c.machine = newChooser(theme.SizeNameText, w.machineItems)
+	c.machine.setText(plainMachine)
+	check := func(words string, on bool, set func(*model.CutWish, bool)) fyne.CanvasObject {
+		box := widget.NewCheck(words, nil)
+		box.Checked = on
+		box.OnChanged = func(on bool) { change(func(w *model.CutWish) { set(w, on) }) }
+		return box
+	}
+	c.gears = widget.NewEntry()
+	c.gears.SetPlaceHolder("64, 80")
+	c.gears.OnSubmitted = func(text string) {
+		gears, err := model.ReadGears(text)
+		w.say(err)
+		if err == nil {
+			change(func(w *model.CutWish) { w.Gears = gears })
+		}
+	}
+	c.write = widget.NewButton("Save as PDF…", w.writeSheet)
+	c.write.Importance = widget.HighImportance
+	c.print = widget.NewButton("Print…", w.printSheet)
+	c.notes = newWrapped(colourDim, theme.SizeNameCaptionText)
+	row := func(words string, o fyne.CanvasObject) fyne.CanvasObject {
+		return container.New(&formRow{}, label(words), o)
+	}
+	wishes := container.New(layout.NewCustomPaddedVBoxLayout(5), heading("Sheet for the bench"),
+		row("Paper", paper), row("Machine", c.machine), row("Indices", order), row("Other gears", c.gears),
+		check("Type a quarter larger", false, func(w *model.CutWish, on bool) { w.Large = on }),
+		check("With maps and ledger", true, func(w *model.CutWish, on bool) { w.Maps = on }),
+		gap(1), heading("For a pupil, leave out"),
+		check("Angles", false, func(w *model.CutWish, on bool) { w.LeaveOut.Angles = on }),
+		check("Indices", false, func(w *model.CutWish, on bool) { w.LeaveOut.Indices = on }),
+		check("Where to stop", false, func(w *model.CutWish, on bool) { w.LeaveOut.Stops = on }))
+	foot := container.New(layout.NewCustomPaddedVBoxLayout(6),
+		container.NewGridWrap(fyne.NewSize(planWide-28, 6*lineHeight()), c.notes), c.write, c.print)
+	return container.New(layout.NewCustomPaddedLayout(12, 14, 14, 14),
+		container.NewBorder(nil, foot, nil, nil, container.NewVScroll(wishes)))
 }
 
-func (w *window) makeSheet() {
-	w.cutting.of = w.bench.Doc.Plan()
-	material, err := model.MaterialOf(w.cutting.of.Material)
+// plainMachine stands for a machine that nobody has described.
+const plainMachine = "plain, none named"
+
+func paperWords(name string) string {
+	for _, p := range sheet.Papers() {
+		if p.Name == name {
+			return fmt.Sprintf("%s  %g × %g mm", strings.ToUpper(name[:1])+name[1:], p.Width, p.Height)
+		}
+	}
+	return name
+}
+
+// machineItems lists the user's machines as the folder has them now.
+func (w *window) machineItems() []*fyne.MenuItem {
+	c := &w.cutting
+	choose := func(name, words string) *fyne.MenuItem {
+		i := fyne.NewMenuItem(words, func() {
+			c.machine.setText(words)
+			c.cut.Change(func(w *model.CutWish) { w.Machine = name })
+		})
+		i.Checked = c.cut.Wish.Machine == name
+		return i
+	}
+	items := []*fyne.MenuItem{choose("", plainMachine)}
+	for _, name := range c.cut.Machines.Names() {
+		items = append(items, choose(name, name))
+	}
+	return append(items, fyne.NewMenuItemSeparator(),
+		fyne.NewMenuItem("Describe another…", w.describeMachine))
+}
+
+// describeMachine asks for the name of a new machine, writes a description to start from,
+// and opens it with the system's editor.
+func (w *window) describeMachine() {
+	name := w.newFormEntry()
+	name.SetPlaceHolder("old red")
+	words := newWrapped(colourDim, theme.SizeNameText)
+	words.setText("A file with a line for each of the machine's numbers is opened in the system's editor. " +
+		"Set the numbers, save it, and choose the machine from this list.")
+	content := container.NewVBox(name, container.NewGridWrap(fyne.NewSize(380, 4*lineHeight()), words))
+	d := dialog.NewCustomConfirm("Name of the machine", "Describe it", "Cancel", content, func(yes bool) {
+		if yes {
+			w.newMachine(strings.TrimSpace(name.Text))
+		}
+	}, w.win)
+	w.raise(d)
+	w.win.Canvas().Focus(name)
+}
+
+func (w *window) newMachine(name string) {
+	path, err := w.cutting.cut.NewMachine(name)
+	if err != nil {
+		w.explain("The machine cannot be described", err)
+		return
+	}
+	w.report("Described in " + path)
+	go func() {
+		if err := openWithSystem(path); err != nil {
+			w.do(func() { w.explain("The description was written, but not opened", err) })
+		}
+	}()
+}
+
+// showFilm shows the steps one by one, or the pages.
+func (w *window) showFilm(film bool) {
+	c := &w.cutting
+	c.filming = film
+	c.film.halt()
+	c.doors[0].setOpen(!film)
+	c.doors[1].setOpen(film)
+	w.refreshCut()
+}
+
+// enterCut lays the sheet out anew if the plan, or how it is looked at, is another.
+func (w *window) enterCut() {
+	plan := w.bench.Doc.Plan()
+	material, err := model.MaterialOf(plan.Material)
 	if err != nil {
 		w.say(err)
 		return
 	}
-	w.cutting.cut.Make(w.cutting.of, material, w.bench.Look.Around, w.bench.Look.Settings().Head, programName())
+	w.cutting.cut.SetSubject(plan, material, w.bench.Look.Around, w.bench.Look.Settings().Head, programName())
+	w.refreshCut()
 }
 
 func (w *window) refreshCut() {
 	c := &w.cutting
-	setVisible(c.line, c.cut.Running)
-	c.line.show(c.cut.Done)
-	if c.cut.Ready() {
-		c.write.Enable()
-	} else {
-		c.write.Disable()
+	if c.notes == nil { // the state tells of itself before the room is built
+		return
 	}
-	switch {
-	case c.cut.Running:
-		c.state.setText("The pages are being laid out.")
-	case c.cut.Trouble != nil:
-		c.state.setText(strings.Join(model.InWords(c.cut.Trouble), "  "))
-	default:
-		c.state.setText(strings.Join(append([]string{fmt.Sprintf("%d pages, as they are printed.", len(c.cut.Pages))}, c.cut.Notes...), "  "))
-		w.showPages()
+	failed := c.cut.Trouble != nil
+	setVisible(c.trouble, failed)
+	setVisible(c.film.box, c.filming && !failed)
+	setVisible(c.paper, !c.filming && !failed)
+	if turns := !c.filming && c.cut.Pages() > 0; turns != c.turner.Visible() {
+		setVisible(c.turner, turns)
+		c.bar.Refresh() // it had no room while it was hidden
+	}
+	if failed {
+		c.troubles.SetText(strings.Join(model.InWords(c.cut.Trouble), "\n\n"))
+	}
+	enable(c.write, c.cut.Ready())
+	enable(c.print, c.cut.Ready())
+	var notes []string
+	if c.cut.Wish.LeaveOut.Any() {
+		notes = append(notes, "A teacher's copy with the answers is saved beside the pupil's.")
+	}
+	for _, n := range c.cut.Notes() {
+		notes = append(notes, strings.ToUpper(n[:1])+n[1:]+".")
+	}
+	c.notes.setText(strings.Join(notes, " "))
+	if !failed && c.filming {
+		c.film.refresh()
+	}
+	if !failed && !c.filming {
+		c.place.setText(fmt.Sprintf("page %d of %d", c.cut.Page+1, c.cut.Pages()))
+		enable(c.back, c.cut.Page > 0)
+		enable(c.next, c.cut.Page+1 < c.cut.Pages())
+		c.page.show(c.cut.Picture, c.cut.Shape())
+		if c.last != c.cut.Page {
+			c.last = c.cut.Page
+			c.page.scroll.ScrollToTop()
+		}
+	}
+	w.refreshProgress()
+	if c.cut.Ready() && c.cut.Picture != nil {
+		w.once("sheet")
 	}
 }
 
-// showPages puts the pages on the screen, one under the other.
-func (w *window) showPages() {
-	c := &w.cutting
-	c.pages.Objects = nil
-	wide := min(820, max(300, w.win.Canvas().Size().Width-planWide-80))
-	for _, img := range c.cut.Pages {
-		page := canvas.NewImageFromImage(img)
-		page.ScaleMode = canvas.ImageScaleFastest
-		page.FillMode = canvas.ImageFillStretch
-		high := wide * float32(img.Rect.Dy()) / float32(img.Rect.Dx())
-		c.pages.Objects = append(c.pages.Objects, container.NewGridWrap(fyne.NewSize(wide, high), page))
+// at is what the room is at, for the header.
+func (c *cutBench) at() runState {
+	s := runState{share: c.cut.Done, active: c.cut.Running, stopped: c.cut.Stopped}
+	switch {
+	case c.cut.Running && c.cut.Sheet != nil && c.cut.Wish.Maps:
+		s.words = fmt.Sprintf("tracing the maps %.0f %%", 100*c.cut.Done)
+	case c.cut.Running:
+		s.words = "laying the pages out"
+	case c.cut.Trouble != nil:
+		s.words = "no sheet"
+	case c.cut.Stopped:
+		s.words = "stopped, without maps"
+	case c.cut.Pages() > 0:
+		s.words = fmt.Sprintf("%d pages, as they are printed", c.cut.Pages())
 	}
-	c.pages.Refresh()
-	c.scroll.Refresh()
-	w.once("sheet")
+	return s
 }
 
 // writeSheet asks for a file and writes the pages to it as PDF.
 func (w *window) writeSheet() {
+	c := &w.cutting
 	d := dialog.NewFileSave(func(f fyne.URIWriteCloser, err error) {
 		if err != nil {
 			w.explain("The sheet cannot be written there", err)
@@ -130,16 +304,45 @@ func (w *window) writeSheet() {
 		if filepath.Ext(path) == "" {
 			path += ".pdf"
 		}
-		if err := w.cutting.cut.Write(path); err != nil {
+		answers, two := c.cut.AnswersName(path)
+		if two && exists(answers) {
+			w.raise(dialog.NewConfirm("The teacher's copy", filepath.Base(answers)+" is there already. Replace it?",
+				func(yes bool) {
+					if yes {
+						w.writeSheetTo(path)
+					}
+				}, w.win))
+			return
+		}
+		w.writeSheetTo(path)
+	}, w.win)
+	d.SetFileName(c.cut.FileName())
+	d.SetFilter(storage.NewExtensionFileFilter([]string{".pdf"}))
+	d.SetTitleText("Save the sheet")
+	w.showFileDialog(d)
+}
+
+func (w *window) writeSheetTo(path string) {
+	w.cutting.cut.Write(path, func(files []string, err error) {
+		if err != nil {
 			w.explain("The sheet was not written", err)
 			return
 		}
-		w.report("Written to " + path)
-	}, w.win)
-	d.SetFileName(w.cutting.cut.FileName())
-	d.SetFilter(storage.NewExtensionFileFilter([]string{".pdf"}))
-	d.SetTitleText("Write the sheet")
-	w.showFileDialog(d)
+		w.report("Written to " + strings.Join(files, " and "))
+		w.tell("written")
+	})
+}
+
+// printSheet hands the sheet to the system's own viewer, which prints it.
+func (w *window) printSheet() {
+	w.report("The sheet is handed to the system's viewer.")
+	w.cutting.cut.Print(openWithSystem, func(path string, err error) {
+		if err != nil {
+			w.explain("The sheet was not opened for printing", err)
+			return
+		}
+		w.report("The sheet is open in the system's viewer: print it from there.")
+	})
 }
 
 // sideLayout gives its first object a fixed width at the left and the other the rest.
@@ -152,4 +355,22 @@ func (l *sideLayout) MinSize([]fyne.CanvasObject) fyne.Size { return fyne.NewSiz
 func (l *sideLayout) Layout(objects []fyne.CanvasObject, size fyne.Size) {
 	place(objects[0], 0, 0, l.width, size.Height)
 	place(objects[1], l.width+paneGap, 0, max(0, size.Width-l.width-paneGap), size.Height)
+}
+
+// formRow sets a name of fixed width before a field.
+type formRow struct{}
+
+// formNames is the width of the names.
+const formNames = 82
+
+// MinSize is the height of the taller one.
+func (*formRow) MinSize(objects []fyne.CanvasObject) fyne.Size {
+	return fyne.NewSize(formNames+80, max(objects[0].MinSize().Height, objects[1].MinSize().Height))
+}
+
+// Layout gives the field the rest.
+func (*formRow) Layout(objects []fyne.CanvasObject, size fyne.Size) {
+	high := objects[0].MinSize().Height
+	place(objects[0], 0, (size.Height-high)/2, formNames, high)
+	place(objects[1], formNames, 0, max(0, size.Width-formNames), size.Height)
 }

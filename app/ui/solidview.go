@@ -24,6 +24,7 @@ type solidView struct {
 	widget.BaseWidget
 
 	stone    *facets.Stone
+	whole    *facets.Stone // sets place and scale; nil for the stone itself
 	pose     solid.Pose
 	selected string
 	pick     func(tier string)
@@ -115,7 +116,11 @@ func (s *solidView) redraw() {
 		s.drawing.Paint(dst, style)
 		s.labels = s.bounceLabels()
 	} else {
-		s.drawing = solid.Project(s.stone, s.pose, width, height, alone)
+		whole := s.whole
+		if whole == nil {
+			whole = s.stone
+		}
+		s.drawing = solid.ProjectWithin(s.stone, whole, s.pose, width, height, alone)
 		s.drawing.Paint(dst, style)
 		const least, wide, high = 150, 26, 15 // square units of a facet that takes a name; of the name
 		unit := float64(s.scale)

@@ -259,3 +259,12 @@ func (w *window) showChoices() {
 		t.fields[i][1].show(c.High)
 	}
 }
+
+// at is what the room is at, for the header.
+func (t *tuneBench) at() runState {
+	s := runState{share: t.tune.Done, active: t.tune.Running}
+	if t.tune.Running {
+		s.words = t.tune.Phase
+	}
+	return s
+}

@@ -304,14 +304,22 @@ func (w *window) enter(r room) {
 	setVisible(w.tuneBox, r == tuneRoom)
 	setVisible(w.cutBox, r == cutRoom)
 	setVisible(w.coming, r == tellRoom)
-	switch r {
+	w.cutting.film.halt()
+	if r == tellRoom {
+		w.notice.SetText(r.coming())
+	}
+	w.followPlan()
+	w.refreshProgress()
+}
+
+// followPlan gives the open room the plan as it stands.
+func (w *window) followPlan() {
+	switch w.room {
 	case tuneRoom:
 		w.enterTune()
 		w.refreshTune()
 	case cutRoom:
 		w.enterCut()
-	case tellRoom:
-		w.notice.SetText(r.coming())
 	}
 }
 
@@ -401,6 +409,7 @@ func (w *window) onPlan() {
 	w.refreshLight()
 	w.refreshFacts()
 	w.refreshMenu()
+	w.followPlan()
 }
 
 func (w *window) refreshStone() {
@@ -470,31 +479,53 @@ func (w *window) refreshPointer() {
 	w.report(fmt.Sprintf("%+.2f mm right, %+.2f mm up from the middle", x, y))
 }
 
-func (w *window) refreshProgress() {
+// runState is what a room is at: shown in the header, and what its Stop button ends.
+type runState struct {
+	words           string
+	share           float64
+	active, stopped bool
+}
+
+// running returns what the open room is at.
+func (w *window) running() runState {
+	switch w.room {
+	case tuneRoom:
+		return w.tuning.at()
+	case cutRoom:
+		return w.cutting.at()
+	}
 	p := w.bench.Look.Progress()
-	w.state.setText(w.bench.Look.Status())
-	w.progress.show(p.Share)
-	setVisible(w.progress, p.Active || p.Stopped)
+	return runState{w.bench.Look.Status(), p.Share, p.Active, p.Stopped}
+}
+
+func (w *window) refreshProgress() {
+	p := w.running()
+	w.state.setText(p.words)
+	w.progress.show(p.share)
+	setVisible(w.progress, p.active || p.stopped)
 	text := "Stop"
-	if p.Stopped {
+	if p.stopped {
 		text = "Go on"
 	}
 	if w.stop.Text != text {
 		w.stop.SetText(text)
 	}
-	if enabled := p.Active || p.Stopped; enabled == w.stop.Disabled() {
-		if enabled {
-			w.stop.Enable()
-		} else {
-			w.stop.Disable()
-		}
-	}
+	enable(w.stop, p.active || p.stopped)
 }
 
+// stopOrResume ends what runs in the open room, or goes on with it.
 func (w *window) stopOrResume() {
-	if w.bench.Look.Progress().Stopped {
+	stopped := w.running().stopped
+	switch {
+	case w.room == cutRoom && stopped:
+		w.cutting.cut.Again()
+	case w.room == cutRoom:
+		w.cutting.cut.Stop()
+	case w.room == tuneRoom:
+		w.tuning.tune.Stop()
+	case stopped:
 		w.bench.Look.Resume()
-	} else {
+	default:
 		w.bench.Look.Stop()
 	}
 }
@@ -510,7 +541,7 @@ func (w *window) strayKey(e *fyne.KeyEvent) {
 		w.grid.enlarge(nil)
 	case w.bench.Look.Ray != nil:
 		w.bench.Look.Unfollow()
-	case w.bench.Look.Progress().Active:
-		w.bench.Look.Stop()
+	case w.running().active:
+		w.stopOrResume()
 	}
 }

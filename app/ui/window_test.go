@@ -562,33 +562,3 @@ func TestEscapeClosesTheDialogOnTop(t *testing.T) {
 		t.Errorf("after Escape %d dialogs, modified %v", len(r.dialogs), r.bench.Doc.Modified())
 	}
 }
-
-func TestRooms(t *testing.T) {
-	r := newRig(t, testdata.Bundled)
-	r.refined(t)
-	r.enter(tuneRoom)
-	if !r.tuneBox.Visible() || r.body.Visible() || len(r.tuning.fields) == 0 || !r.tuning.take.Disabled() {
-		t.Errorf("the room for tuning: shown %v, %d choices, nothing to take yet %v",
-			r.tuneBox.Visible(), len(r.tuning.fields), r.tuning.take.Disabled())
-	}
-	r.cutting.cut.Maps = false // they take a second
-	r.enter(cutRoom)
-	r.until(t, "the sheet", r.cutting.cut.Ready)
-	if n := len(r.cutting.pages.Objects); !r.cutBox.Visible() || n < 2 || r.cutting.write.Disabled() {
-		t.Errorf("the room for the sheet: shown %v, %d pages, to be written %v", r.cutBox.Visible(), n, !r.cutting.write.Disabled())
-	}
-	// Another plan gives another sheet, the same plan does not.
-	pages := r.cutting.cut.Pages
-	r.enter(lookRoom)
-	r.enter(cutRoom)
-	if r.cutting.cut.Running {
-		t.Error("the sheet of the same plan is laid out again")
-	}
-	typeInto(r, r.row(t, "P1").field, "41")
-	r.enter(cutRoom)
-	r.until(t, "the other sheet", func() bool { return r.cutting.cut.Ready() && &r.cutting.cut.Pages[0] != &pages[0] })
-	r.enter(tellRoom)
-	if !r.coming.Visible() || r.cutBox.Visible() || r.notice.Text == "" {
-		t.Error("the room that is still to come says nothing")
-	}
-}

@@ -1,0 +1,141 @@
+package ui
+
+import (
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/driver/desktop"
+	"fyne.io/fyne/v2/test"
+
+	"pavilight/app/model"
+	"pavilight/testdata"
+)
+
+// inCut returns the window with the room for the sheet open and its pages in view,
+// without their maps, which take a second.
+func inCut(t *testing.T, size fyne.Size) *rig {
+	t.Helper()
+	r := newRig(t, testdata.Bundled)
+	r.win.Resize(size)
+	r.refined(t)
+	r.cutting.cut.Wish.Maps = false
+	r.enter(cutRoom)
+	r.until(t, "the sheet", func() bool { return r.cutting.cut.Ready() && r.cutting.cut.Picture != nil })
+	return r
+}
+
+func press(key fyne.KeyName) *fyne.KeyEvent { return &fyne.KeyEvent{Name: key} }
+
+func TestCutRoomShowsThePages(t *testing.T) {
+	r := inCut(t, fyne.NewSize(usualWidth, usualHeight))
+	c := &r.cutting
+	if !r.cutBox.Visible() || r.body.Visible() || c.write.Disabled() || c.page.picture.Image == nil {
+		t.Fatalf("shown %v, to be written %v", r.cutBox.Visible(), !c.write.Disabled())
+	}
+	// The picture has the pixels of the screen: nothing is stretched.
+	if got, want := c.cut.Picture.Rect.Dx(), c.page.picture.Size().Width*r.win.Canvas().Scale(); float32(got) < want-1 || float32(got) > want+1 {
+		t.Errorf("a page %v pixels wide is shown %v wide", got, want)
+	}
+	first := c.page.picture.Image
+	c.page.TypedKey(press(fyne.KeyPageDown))
+	r.until(t, "the second page", func() bool { return c.page.picture.Image != first })
+	if !strings.HasPrefix(c.place.text, "page 2 of ") {
+		t.Errorf("the bar says %q", c.place.text)
+	}
+	// Another plan gives another sheet, the same plan does not.
+	before := c.cut.Sheet
+	r.enter(lookRoom)
+	r.enter(cutRoom)
+	if c.cut.Running {
+		t.Error("the sheet of the same plan is laid out again")
+	}
+	typeInto(r, r.row(t, "P1").field, "41")
+	r.until(t, "the other sheet", func() bool { return c.cut.Ready() && c.cut.Sheet != before })
+	if c.cut.Sheet.Plan.Tiers[0].Angle.Degrees() != 41 {
+		t.Errorf("P1 is on the sheet at %v", c.cut.Sheet.Plan.Tiers[0].Angle)
+	}
+}
+
+func TestFilmGoesThroughTheSteps(t *testing.T) {
+	r := inCut(t, fyne.NewSize(usualWidth, usualHeight))
+	c := &r.cutting
+	r.showFilm(true)
+	if !c.film.box.Visible() || c.paper.Visible() || len(c.film.bar.names) != len(r.bench.Doc.Plan().Tiers)+1 {
+		t.Fatalf("the film is shown: %v, its steps %v", c.film.box.Visible(), c.film.bar.names)
+	}
+	whole := c.film.solid.stone
+	test.Tap(c.film.next)
+	if c.film.solid.stone == whole || c.film.solid.selected != "P1" || !strings.HasPrefix(c.film.title.text, "1 of ") {
+		t.Errorf("after Next: %q, %q new", c.film.title.text, c.film.solid.selected)
+	}
+	c.film.bar.TypedKey(press(fyne.KeyEnd))
+	last := c.film.bar.names[len(c.film.bar.names)-1]
+	if c.film.solid.selected != last || !c.film.next.Disabled() {
+		t.Errorf("at the end %q is new, want %q", c.film.solid.selected, last)
+	}
+	c.film.bar.MouseDown(&desktop.MouseEvent{PointEvent: fyne.PointEvent{Position: fyne.NewPos(1, 1)}})
+	if c.cut.Step != 0 {
+		t.Errorf("a click on the first bar leads to step %d", c.cut.Step)
+	}
+}
+
+// A plan that makes no stone has no sheet, and the room says why.
+func TestCutRoomSaysWhyThereIsNoSheet(t *testing.T) {
+	r := inCut(t, fyne.NewSize(usualWidth, usualHeight))
+	c := &r.cutting
+	c.cut.Machines = "/nonexistent"
+	c.cut.Change(func(w *model.CutWish) { w.Machine = "gone" })
+	r.until(t, "the trouble", func() bool { return c.cut.Trouble != nil && !c.cut.Running })
+	if !c.trouble.Visible() || c.paper.Visible() || !strings.Contains(c.troubles.Text, "gone") || !c.write.Disabled() {
+		t.Errorf("trouble shown %v: %q", c.trouble.Visible(), c.troubles.Text)
+	}
+}
+
+func TestSheetIsWrittenFromTheRoom(t *testing.T) {
+	r := inCut(t, fyne.NewSize(usualWidth, usualHeight))
+	path := filepath.Join(t.TempDir(), "sheet.pdf")
+	r.writeSheetTo(path)
+	r.until(t, "the file", func() bool { return strings.Contains(r.message.text, path) })
+	if text, err := os.ReadFile(path); err != nil || !strings.HasPrefix(string(text), "%PDF-") {
+		t.Errorf("%.8q, %v", text, err)
+	}
+	r.writeSheetTo(filepath.Join(path, "no-folder", "sheet.pdf"))
+	r.until(t, "the refusal", func() bool { return len(r.dialogs) == 1 })
+	r.escape()
+}
+
+// A new machine's description is written once and is then in the list.
+func TestMachineIsDescribed(t *testing.T) {
+	r := inCut(t, fyne.NewSize(usualWidth, usualHeight))
+	r.cutting.cut.Machines = "" // as without a folder for settings
+	if _, err := r.cutting.cut.NewMachine("mine"); err == nil {
+		t.Error("a machine is written nowhere")
+	}
+}
+
+// Nothing of the rooms lies outside the window at the two sizes.
+func TestRoomsFitTheWindow(t *testing.T) {
+	for _, size := range []fyne.Size{{Width: 1360, Height: 860}, {Width: 1024, Height: 700}} {
+		r := inCut(t, size)
+		inside := func(name string, o fyne.CanvasObject) {
+			t.Helper()
+			at := fyne.CurrentApp().Driver().AbsolutePositionForObject(o)
+			if at.X < 0 || at.Y < 0 || at.X+o.Size().Width > size.Width+1 || at.Y+o.Size().Height > size.Height+1 || o.Size().Width < 10 {
+				t.Errorf("%v: %s is %v at %v", size, name, o.Size(), at)
+			}
+		}
+		c := &r.cutting
+		inside("write", c.write)
+		inside("print", c.print)
+		inside("page scroll", c.page.scroll)
+		inside("turner", c.turner)
+		r.showFilm(true)
+		c.cut.GoTo(c.cut.Steps())
+		inside("solid", c.film.solid)
+		inside("steps", c.film.bar)
+		inside("next", c.film.next)
+	}
+}
