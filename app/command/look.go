@@ -401,6 +401,15 @@ func printLook(w io.Writer, s *subject, scene trace.Scene, r *lookResult, result
 	row("index around", func(i int) string { return fmt.Sprintf("%.4f", r.Media[i].IndexMedium) })
 	row("index of the stone", func(i int) string { return fmt.Sprintf("%.4f", r.Media[i].IndexStone) })
 	row("critical angle", func(i int) string { return inDegrees(r.Media[i].CriticalDeg, "there is none") })
+	for k := range result.Columns[0].Limits { // of both rays, the lower index first: warnings go by that one
+		row(fmt.Sprintf("at its index %.4f", result.Columns[0].Limits[k].Index), func(i int) string {
+			limit := result.Columns[i].Limits[k]
+			if !limit.HasCritical {
+				return "there is none"
+			}
+			return limit.Critical.String()
+		})
+	}
 	for q := trace.Surface; q <= trace.Unresolved; q++ {
 		row(q.String(), func(i int) string {
 			return withError(q.Of(r.Media[i].Ledger), q.Of(r.Media[i].StandardError))

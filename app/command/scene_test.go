@@ -63,6 +63,9 @@ func TestScene(t *testing.T) {
 	if doubly.Ledger.Returned == bare.Ledger.Returned {
 		t.Error("an optic axis changes nothing at all")
 	}
+	if text := runCommand(quick("look", "--axis", "90,0")...).stdout; !strings.Contains(text, "at its index 1.7600") || !strings.Contains(text, "34.62°") {
+		t.Errorf("the critical angle of the lower index is not told: %s", text) // n_e 1.76000 of Malitson & Dodge 1972: asin(1/n)
+	}
 	room := look("--light", "room", "--head", "0")
 	if room.Lit.Sum == bare.Lit.Sum || !(room.Lit.Sum > 0) {
 		t.Errorf("in a room %v is seen", room.Lit)
