@@ -13,6 +13,7 @@ type Map struct {
 	Span   float64      // mm across the whole picture
 	cells  []cell       // row by row
 	colour [][3]float32 // sums of X, Y and Z likewise; nil where colour was not gathered
+	ways   []float32    // sums of way inside times power, mm; nil where they were not gathered
 	inside []bool       // the pixel's middle shows the stone; shared, never written again
 }
 
@@ -23,17 +24,20 @@ type cell struct {
 	rays   int32
 }
 
-func newMap(pixels int, span float64, inside []bool, colour bool) *Map {
+func newMap(pixels int, span float64, inside []bool, colour, ways bool) *Map {
 	m := &Map{Pixels: pixels, Span: span, cells: make([]cell, pixels*pixels), inside: inside}
 	if colour {
 		m.colour = make([][3]float32, pixels*pixels)
+	}
+	if ways {
+		m.ways = make([]float32, pixels*pixels)
 	}
 	return m
 }
 
 func (m *Map) clone() *Map {
 	c := *m
-	c.cells, c.colour = slices.Clone(m.cells), slices.Clone(m.colour)
+	c.cells, c.colour, c.ways = slices.Clone(m.cells), slices.Clone(m.colour), slices.Clone(m.ways)
 	return &c
 }
 
@@ -54,6 +58,9 @@ func (m *Map) addColour(pixel int, radiance float64, xyz [3]float64) {
 		m.colour[pixel][i] += float32(radiance * xyz[i])
 	}
 }
+
+// addWay adds a way inside times the power and weight of its light, in mm.
+func (m *Map) addWay(pixel int, way float64) { m.ways[pixel] += float32(way) }
 
 // At returns the mean ledger of the rays that fell into the pixel and their
 // number, 0 outside the outline and where no ray fell yet.
@@ -98,6 +105,19 @@ func (m *Map) XYZ() [][3]float32 {
 		}
 	}
 	return xyz
+}
+
+// PathLengths returns the mean way inside the stone, in mm, of the light of each pixel
+// that leaves it from inside, in the order and with the gaps filled as by Field; a
+// pixel from which nothing comes out is such a gap. It returns nil where ways were not
+// gathered.
+func (m *Map) PathLengths() []float32 {
+	if m.ways == nil {
+		return nil
+	}
+	return m.filled(
+		func(i int) float32 { return m.ways[i] },
+		func(i int) float32 { c := &m.cells[i]; return float32(c.Returned + c.Head + c.Leaked) })
 }
 
 // filled returns sum over weight of every pixel.

@@ -119,7 +119,7 @@ func newRun(scene Scene, settings Settings) (*run, error) {
 	r.columns = make([]columnState, len(scene.Surroundings))
 	for k := range r.columns {
 		c := &r.columns[k]
-		c.mapped = newMap(settings.Pixels, 2*r.tracer.outline.half*r.tracer.body.unit, inside, settings.Colour)
+		c.mapped = newMap(settings.Pixels, 2*r.tracer.outline.half*r.tracer.body.unit, inside, settings.Colour, settings.Paths)
 		if !scene.plain(k, settings) && !(r.tracer.kernel != nil && scene.clean(k, settings)) {
 			c.traveller = scene.traveller(k, settings, r.tracer)
 		}
@@ -240,6 +240,7 @@ type chunk struct {
 	weights          []float64   // of each entry
 	ledgers          [][]Ledger  // by column, of each entry
 	lit              [][]float64 // likewise the luminance seen, where colour is gathered
+	ways             [][]float64 // likewise the way inside times power, in units of the stone, where ways are
 	sums             []sums      // by column
 }
 
@@ -270,10 +271,11 @@ func (r *run) trace(unit, scrambling, number int) *chunk {
 		}
 	}
 	c.ledgers, c.lit = make([][]Ledger, len(r.columns)), make([][]float64, len(r.columns))
+	c.ways = make([][]float64, len(r.columns))
 	rays := make([]ray, 0, len(r.columns)*len(c.entries)) // of all plain columns, one after the other
 	for k := range r.columns {
 		if t := r.columns[k].traveller; t != nil {
-			c.ledgers[k], c.lit[k] = r.travel(t, points, k, c.entries, &c.sums[k])
+			c.ledgers[k], c.lit[k], c.ways[k] = r.travel(t, points, k, c.entries, &c.sums[k])
 		} else {
 			rays = r.plainRays(rays, points, k, c.entries)
 		}
@@ -353,9 +355,10 @@ func (r *run) plainRays(rays []ray, points points, column int, entries []entry) 
 	return rays
 }
 
-// travel traces entries with a general tracer; lit is what is seen by each.
-func (r *run) travel(t *traveller, points points, column int, entries []entry, total *sums) (ledgers []Ledger, lit []float64) {
-	ledgers, lit = make([]Ledger, len(entries)), make([]float64, len(entries))
+// travel traces entries with a general tracer; lit is what is seen by each, ways the
+// way inside times power.
+func (r *run) travel(t *traveller, points points, column int, entries []entry, total *sums) (ledgers []Ledger, lit, ways []float64) {
+	ledgers, lit, ways = make([]Ledger, len(entries)), make([]float64, len(entries)), make([]float64, len(entries))
 	var at lambda
 	for i := range entries {
 		e := &entries[i]
@@ -365,11 +368,12 @@ func (r *run) travel(t *traveller, points points, column int, entries []entry, t
 		one.addLedger(ledgers[i])
 		one[rayCount] = 1
 		lit[i] = one[litSurface] + one[litReturned] + one[litLeaked]
+		ways[i] = one[pathLength]
 		segments := one[segmentCount]
 		total.addWeighted(e.xyz[1], &one)
 		total[segmentCount] += segments - e.xyz[1]*segments // a count knows no weight
 	}
-	return ledgers, lit
+	return ledgers, lit, ways
 }
 
 // add takes chunks into the run's sums and maps. It goes through the map image by
@@ -392,6 +396,11 @@ func (r *run) add(batch []*chunk) {
 				if r.settings.Colour {
 					for i, pixel := range c.pixels[image] {
 						mapped.addColour(int(pixel), c.lit[k][i], c.entries[i].xyz)
+					}
+				}
+				if r.settings.Paths {
+					for i, pixel := range c.pixels[image] {
+						mapped.addWay(int(pixel), c.weights[i]*c.ways[k][i]*r.tracer.body.unit)
 					}
 				}
 			}
