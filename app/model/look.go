@@ -49,7 +49,7 @@ type Look struct {
 	Frame   *Frame   // the maps; nil before the first answer
 	Trouble error    // why the latest plan or settings could not be shown; nil if they are
 	Around  []Around // one column each
-	Row     [Rows]trace.Quantity
+	Row     [Rows]Shown
 	Pointer Pointer
 	Ray     *Ray   // the ray that is followed; nil for none
 	Strip   *Strip // how it looks when rocked; nil before the first maps are refined
@@ -58,7 +58,8 @@ type Look struct {
 	onChange func(Change)
 	trace    tracing
 	settings trace.Settings
-	maps     [quantityCount]*picture.ColourMap
+	light    string // that colour is seen under
+	maps     [shownCount]*picture.ColourMap
 
 	latest  request // what should be shown
 	waiting bool    // latest has not been started yet
@@ -95,10 +96,16 @@ type Frame struct {
 	Settings trace.Settings
 	Around   []Around
 	Result   *trace.Result
-	Row      [Rows]trace.Quantity
-	Fields   [Rows][][]float32   // by row and column, as trace.Map.Field gives them
+	Seen     *trace.Result // path length and colour, where a row shows them; nil before the first
+	Row      [Rows]Shown
+	Fields   [Rows][][]float32   // by row and column: shares, mm, or luminance; nil where nothing is known yet
 	Pictures [Rows][]*image.RGBA // by row and column; clear outside the outline
+	Late     [Rows]bool          // nothing is known yet: the pictures are those before, or clear
+	Most     [Rows]float64       // the number at the top of the row's scale
+	Share    float64             // of the work done
 	Final    bool                // the run reached its goal
+
+	extras extras // gathered in Seen
 }
 
 // tracing is trace.Run or, in tests, what stands in for it.
@@ -109,6 +116,7 @@ type request struct {
 	solve    func() (Subject, error)
 	settings trace.Settings
 	around   []Around
+	extras   extras
 	strip    *Strip // the last that is complete, which need not be traced again; may be nil
 	lastGood bool   // not the latest plan, which cannot be had, but the stone before it
 }
@@ -125,8 +133,6 @@ type run struct {
 	pending  atomic.Pointer[Frame]
 }
 
-const quantityCount = int(trace.Unresolved) + 1
-
 // DefaultMapPixels is the edge of a map before the window's size is known.
 const DefaultMapPixels = 300
 
@@ -137,7 +143,8 @@ const DefaultMapPixels = 300
 // onChange is called there.
 func NewLook(do func(func()), onChange func(Change)) (*Look, error) {
 	l := &Look{
-		Row:      [Rows]trace.Quantity{trace.Returned, trace.Leaked},
+		Row:      [Rows]Shown{Shown(trace.Returned), Shown(trace.Leaked)},
+		light:    "room",
 		do:       do,
 		onChange: onChange,
 		trace:    trace.Run,
@@ -156,27 +163,24 @@ func NewLook(do func(func()), onChange func(Change)) (*Look, error) {
 		l.Around = append(l.Around, Around{Medium: m})
 	}
 	for q := range l.maps {
-		l.maps[q] = colourMap(trace.Quantity(q))
+		l.maps[q] = colourMap(Shown(q))
 	}
 	return l, nil
 }
 
 // colourMap returns the colours of a quantity: one map for light that serves the
 // viewer, another for light that is lost to them.
-func colourMap(q trace.Quantity) *picture.ColourMap {
-	if q == trace.Returned || q == trace.Surface {
+func colourMap(s Shown) *picture.ColourMap {
+	if s == Shown(trace.Returned) || s == Shown(trace.Surface) {
 		return picture.Cividis()
 	}
 	return picture.Cubehelix()
 }
 
-// ColourMap returns the colours in which a row is painted.
-func (l *Look) ColourMap(row int) *picture.ColourMap { return l.maps[l.Row[row]] }
-
 // Show asks for the maps of another stone. solve is called once or more often, on
 // another goroutine.
 func (l *Look) Show(solve func() (Subject, error)) {
-	l.latest = request{solve: solve, settings: l.settings, around: l.Around}
+	l.latest = request{solve: solve, settings: l.settings, around: l.Around, extras: extrasFor(l.Row, l.light)}
 	l.restart()
 }
 
@@ -205,15 +209,17 @@ func (l *Look) SetAround(column int, a Around) {
 	l.restart()
 }
 
-// SetRow puts another quantity into a row. What is known is painted at once.
-func (l *Look) SetRow(row int, q trace.Quantity) {
-	if l.Row[row] == q {
+// SetRow lets a row show something else. What is known is painted at once; what is not
+// is traced.
+func (l *Look) SetRow(row int, s Shown) {
+	if l.Row[row] == s {
 		return
 	}
-	l.Row[row] = q
+	l.Row[row] = s
 	if l.Frame != nil {
 		l.show(l.repaint(l.Frame))
 	}
+	l.wantExtras()
 	l.onChange(MapsChanged)
 }
 
@@ -284,7 +290,7 @@ type solveError struct{ error }
 func (e solveError) Unwrap() error { return e.error }
 
 // trail solves and traces, on a goroutine of its own, and hands over what it finds.
-func (l *Look) trail(ctx context.Context, r *run, row [Rows]trace.Quantity) error {
+func (l *Look) trail(ctx context.Context, r *run, row [Rows]Shown) error {
 	subject, err := r.request.solve()
 	if err != nil {
 		return solveError{err}
@@ -292,10 +298,15 @@ func (l *Look) trail(ctx context.Context, r *run, row [Rows]trace.Quantity) erro
 	l.do(func() { l.solved(r, subject) })
 	scene := trace.Scene{Stone: subject.Stone, Material: subject.Material, Surroundings: surroundings(r.request.around)}
 	pace := newPace()
-	hand := func(result *trace.Result, final bool) {
-		f := l.paint(Frame{Subject: subject, Settings: r.request.settings, Around: r.request.around,
-			Result: result, Row: row, Final: final})
-		if late := r.pending.Swap(f); late != nil {
+	extras := r.request.extras
+	parts := 1.0 // of the work
+	if extras.any() {
+		parts = 2
+	}
+	hand := func(f Frame) {
+		f.Subject, f.Settings, f.Around, f.Row = subject, r.request.settings, r.request.around, row
+		painted := l.paint(f)
+		if late := r.pending.Swap(painted); late != nil {
 			l.buffers.giveBack(late) // nobody has seen it; the new one takes its turn
 			return
 		}
@@ -303,18 +314,44 @@ func (l *Look) trail(ctx context.Context, r *run, row [Rows]trace.Quantity) erro
 	}
 	result, err := l.trace(ctx, scene, r.request.settings, func(result *trace.Result) {
 		if ctx.Err() == nil && pace.due(time.Now()) {
-			hand(result, false)
+			hand(Frame{Result: result, Share: result.Done / parts})
 		}
 	})
 	if err != nil {
 		return err
 	}
-	hand(result, true)
+	hand(Frame{Result: result, Share: 1 / parts, Final: parts == 1})
+	if extras.any() {
+		if err := l.traceExtras(ctx, scene, r.request, func(seen *trace.Result, final bool) {
+			if final || pace.due(time.Now()) {
+				hand(Frame{Result: result, Seen: seen, extras: extras, Share: (1 + seen.Done) / parts, Final: final})
+			}
+		}); err != nil {
+			return err
+		}
+	}
 	strip := newStrip(subject, r.request.settings, r.request.around, StripRange)
 	if strip.like(r.request.strip) {
 		return nil
 	}
 	return l.traceStrip(ctx, strip, func(s *Strip) { l.do(func() { l.rocked(r, s) }) })
+}
+
+// traceExtras gathers what the fast maps do not hold, and hands it over as it comes.
+func (l *Look) traceExtras(ctx context.Context, scene trace.Scene, q request, hand func(*trace.Result, bool)) error {
+	settings, err := q.extras.settings(q.settings)
+	if err != nil {
+		return err
+	}
+	seen, err := l.trace(ctx, scene, settings, func(seen *trace.Result) {
+		if ctx.Err() == nil {
+			hand(seen, false)
+		}
+	})
+	if err == nil {
+		hand(seen, true)
+	}
+	return err
 }
 
 // rocked takes a strip, as far as it has come.
@@ -351,24 +388,28 @@ func (p *pace) due(now time.Time) bool {
 func (l *Look) paint(f Frame) *Frame {
 	columns := f.Result.Columns
 	f.Pictures = l.buffers.take(len(columns), f.Settings.Pixels)
-	for i, q := range f.Row {
-		f.Fields[i] = make([][]float32, len(columns))
-		for j := range columns {
-			m := columns[j].Map
-			f.Fields[i][j] = m.Field(q)
-			dst := f.Pictures[i][j]
-			picture.Paint(dst, f.Fields[i][j], m.Pixels, l.maps[q])
-			clearOutside(dst, f.Fields[i][j])
-		}
+	for i := range f.Row {
+		l.paintRow(&f, i)
 	}
 	return &f
 }
 
-// repaint makes the frame anew for the quantities that are wanted now.
+// repaint makes the frame anew for what the rows show now. It is called on the window's
+// goroutine, so what is painted already is copied, not painted again.
 func (l *Look) repaint(f *Frame) *Frame {
 	again := *f
 	again.Row = l.Row
-	return l.paint(again)
+	again.Pictures = l.buffers.take(len(f.Result.Columns), f.Settings.Pixels)
+	for i := range again.Row {
+		if again.Row[i] != f.Row[i] {
+			l.paintRow(&again, i)
+			continue
+		}
+		for j, dst := range again.Pictures[i] {
+			copy(dst.Pix, f.Pictures[i][j].Pix)
+		}
+	}
+	return &again
 }
 
 // clearOutside lets the window's ground show around the stone, in any theme.
@@ -401,10 +442,11 @@ func (l *Look) arrived(r *run, f *Frame) {
 		l.buffers.giveBack(f)
 		return
 	}
-	r.answered, r.share = true, f.Result.Done
+	r.answered, r.share = true, f.Share
 	if f.Row != l.Row { // another quantity was chosen meanwhile
-		l.buffers.giveBack(f)
-		f = l.repaint(f)
+		painted := f
+		f = l.repaint(painted)
+		l.buffers.giveBack(painted)
 	}
 	l.show(f)
 	l.onChange(MapsChanged)
@@ -414,6 +456,7 @@ func (l *Look) arrived(r *run, f *Frame) {
 func (l *Look) show(f *Frame) {
 	before := l.Frame
 	if before != nil {
+		f.keepLate(before)
 		l.buffers.giveBack(before)
 	}
 	l.Frame = f
@@ -448,7 +491,7 @@ func (l *Look) ended(r *run, err error) {
 func (l *Look) finishLastGood(failed *run) {
 	good, q := l.Subject, failed.request
 	if l.waiting || good.Stone == nil || l.Frame != nil && l.Frame.Final && l.Frame.Subject == good &&
-		l.Frame.Settings == q.settings && slices.Equal(l.Frame.Around, q.around) {
+		l.Frame.Settings == q.settings && slices.Equal(l.Frame.Around, q.around) && l.Frame.extras.cover(q.extras) {
 		return
 	}
 	q.solve = func() (Subject, error) { return good, nil }
@@ -473,7 +516,7 @@ func (l *Look) Progress() Progress {
 	case l.running != nil:
 		p.Share = l.running.share
 	case l.Frame != nil:
-		p.Share = l.Frame.Result.Done
+		p.Share = l.Frame.Share
 	}
 	if p.Stopped {
 		p.Active = false

@@ -52,6 +52,7 @@ func (w *window) settle() {
 type engine struct {
 	mu      sync.Mutex
 	scenes  []trace.Scene
+	asked   []trace.Settings // with each
 	strips  []trace.View
 	step    chan float64 // the share done to report; 1 ends the run
 	running int
@@ -65,7 +66,7 @@ func (e *engine) trace(ctx context.Context, scene trace.Scene, s trace.Settings,
 		e.strips = append(e.strips, s.View)
 		return resultOf(scene, 1), nil
 	}
-	e.scenes = append(e.scenes, scene)
+	e.scenes, e.asked = append(e.scenes, scene), append(e.asked, s)
 	e.running++
 	e.most = max(e.most, e.running)
 	e.mu.Unlock()

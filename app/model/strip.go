@@ -80,27 +80,28 @@ func (l *Look) traceStrip(ctx context.Context, s *Strip, hand func(*Strip)) erro
 	return nil
 }
 
-// StripPicture paints the small map of a stop, of the first column and the first
-// row's quantity; nil where it is not traced yet.
+// StripPicture paints the small map of a stop, of the first column, of what StripMeaning
+// tells; nil where it is not traced yet.
 func (l *Look) StripPicture(stop int) *image.RGBA {
 	if l.Strip == nil || l.Strip.Results[stop] == nil || len(l.Strip.Results[stop].Columns) == 0 {
 		return nil
 	}
 	m := l.Strip.Results[stop].Columns[0].Map
-	field := m.Field(l.Row[0])
+	entry := l.stripEntry()
+	field := m.Field(entry)
 	dst := image.NewRGBA(image.Rect(0, 0, m.Pixels, m.Pixels))
-	picture.Paint(dst, field, m.Pixels, l.maps[l.Row[0]])
+	picture.Paint(dst, field, m.Pixels, l.maps[entry])
 	clearOutside(dst, field)
 	return dst
 }
 
-// StripShare returns the mean of the first row's quantity at a stop in a column's
+// StripShare returns the mean of what StripMeaning tells at a stop in a column's
 // surrounding, false where it is not traced yet.
 func (l *Look) StripShare(stop, column int) (float64, bool) {
 	if l.Strip == nil || l.Strip.Results[stop] == nil || column >= len(l.Strip.Results[stop].Columns) {
 		return 0, false
 	}
-	return l.Row[0].Of(l.Strip.Results[stop].Columns[column].Ledger), true
+	return l.stripEntry().Of(l.Strip.Results[stop].Columns[column].Ledger), true
 }
 
 // StripStop returns the stop of the strip at which the maps stand, false between two.

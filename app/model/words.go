@@ -147,7 +147,10 @@ func (l *Look) UnderPointer(row, column int) (float64, bool) {
 		return 0, false
 	}
 	field := l.Frame.Fields[row][column]
-	pixels := l.Frame.Result.Columns[column].Map.Pixels
+	pixels := l.Frame.Settings.Pixels
+	if len(field) != pixels*pixels {
+		return 0, false
+	}
 	at := func(share float64) int { return min(pixels-1, int(share*float64(pixels))) }
 	i := at(l.Pointer.Y)*pixels + at(l.Pointer.X)
 	if i < 0 || i >= len(field) || math.IsNaN(float64(field[i])) {

@@ -3,8 +3,6 @@ package ui
 import (
 	"image"
 	"image/color"
-	"strconv"
-	"strings"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/container"
@@ -42,6 +40,7 @@ type grid struct {
 	pixels   int     // of a map's edge on the screen, as last asked for
 	onPixels func(int)
 	onTilt   func(facets.Angle)
+	onRow    func() // a row shows something else
 }
 
 // newGrid builds the grid; stray takes the keys that it has no use for.
@@ -168,17 +167,18 @@ func (g *grid) mediaItems(column int) []*fyne.MenuItem {
 // quantityItems lists what a row can show.
 func (g *grid) quantityItems(row int) []*fyne.MenuItem {
 	var items []*fyne.MenuItem
-	for _, q := range model.Quantities() {
-		item := fyne.NewMenuItem(model.QuantityName(q), func() { g.setRow(row, q) })
-		item.Checked = q == g.bench.Look.Row[row]
+	for _, s := range model.Choices() {
+		item := fyne.NewMenuItem(model.ShownName(s), func() { g.setRow(row, s) })
+		item.Checked = s == g.bench.Look.Row[row]
 		items = append(items, item)
 	}
 	return items
 }
 
-func (g *grid) setRow(row int, q trace.Quantity) {
-	g.bench.Look.SetRow(row, q)
+func (g *grid) setRow(row int, s model.Shown) {
+	g.bench.Look.SetRow(row, s)
 	g.refreshHeadings()
+	g.onRow()
 	g.strip.show()
 }
 
@@ -196,12 +196,12 @@ func (g *grid) refreshHeadings() {
 		g.critical[j].setText(h.Critical)
 	}
 	for i := range model.Rows {
-		q := g.bench.Look.Row[i]
-		g.row[i].setText(model.QuantityName(q))
-		g.meaning[i].setText(model.QuantityMeaning(q))
-		g.scales[i].show(g.bench.Look.ColourMap(i))
+		s := g.bench.Look.Row[i]
+		g.row[i].setText(model.ShownName(s))
+		g.meaning[i].setText(model.ShownMeaning(s))
+		g.scales[i].show(g.bench.Look.Scale(i))
 	}
-	g.rocked.setText("mean " + strings.ToLower(model.QuantityName(g.bench.Look.Row[0])) + ", 0 below, 1 above; a click tilts the maps")
+	g.rocked.setText(g.bench.Look.StripMeaning())
 	g.box.Refresh()
 }
 
@@ -215,17 +215,19 @@ func (g *grid) refreshMaps() {
 			if f != nil && j < len(f.Pictures[i]) {
 				img = f.Pictures[i][j]
 			}
-			if view.picture.Image != img {
-				view.picture.Image = img
+			faded := 0.0
+			if g.bench.Look.Late(i) {
+				faded = lateFaded
+			}
+			if view.picture.Image != img || view.picture.Translucency != faded {
+				view.picture.Image, view.picture.Translucency = img, faded
 				view.picture.Refresh()
 			}
 		}
+		g.scales[i].show(g.bench.Look.Scale(i))
 	}
 	g.refreshPointer()
 }
-
-// formatShare writes a share as the maps tell it.
-func formatShare(v float64) string { return strconv.FormatFloat(v, 'f', 3, 64) }
 
 // refreshRay marks where the followed ray enters, in the maps of its column.
 func (g *grid) refreshRay() {
@@ -249,8 +251,8 @@ func (g *grid) refreshPointer() {
 		for j := range columns {
 			text := ""
 			if v, ok := g.bench.Look.UnderPointer(i, j); ok {
-				text = formatShare(v)
-				marks = append(marks, v)
+				text = g.bench.Look.ValueText(i, v)
+				marks = append(marks, v/g.bench.Look.Scale(i).Most)
 			}
 			g.maps[i][j].show(p.Over, p.X, p.Y, text)
 		}
@@ -299,6 +301,8 @@ const (
 	between   = 10  // columns
 	beneath   = 8   // a row of maps
 	mostEdge  = 420 // of a map
+
+	lateFaded = 0.7 // how far maps fade that are not of the present stone
 
 	leastWithStrip = 168 // edge of a map, below which the strip gives way
 )

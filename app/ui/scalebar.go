@@ -3,20 +3,24 @@ package ui
 import (
 	"image"
 	"image/color"
+	"strconv"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
 
+	"pavilight/app/model"
 	"pavilight/app/picture"
 )
 
-// scaleBar is the scale of a row of maps, from 0 below to 1 above, with a pointer
-// at each number under the cross-hair.
+// scaleBar is the scale of a row of maps, from 0 below to 1 or another number above,
+// with a pointer at each number under the cross-hair. It is empty where colours stand
+// for themselves.
 type scaleBar struct {
 	widget.BaseWidget
-	name  string // of the colour map shown
+	scale model.Scale
+	name  string // of the colour map shown; empty for none
 	strip *canvas.Image
 	marks []float64
 }
@@ -28,17 +32,40 @@ func newScaleBar() *scaleBar {
 	return s
 }
 
-func (s *scaleBar) show(m *picture.ColourMap) {
-	if m.Name == s.name {
+func (s *scaleBar) show(scale model.Scale) {
+	name := ""
+	if scale.Colours != nil {
+		name = scale.Colours.Name
+	}
+	if name == s.name && scale.Most == s.scale.Most {
 		return
 	}
-	s.name = m.Name
+	s.name, s.scale = name, scale
+	s.strip.Image = nil
+	if m := scale.Colours; m != nil {
+		s.strip.Image = stripOf(m)
+	}
+	s.strip.Hidden = s.name == ""
+	s.strip.Refresh()
+	s.Refresh()
+}
+
+// numbers are what stands beside the strip, the top first.
+func (s *scaleBar) numbers() [3]string {
+	if s.scale.Colours == nil {
+		return [3]string{}
+	}
+	write := func(v float64) string { return strconv.FormatFloat(v, 'g', 3, 64) }
+	return [3]string{write(s.scale.Most), write(s.scale.Most / 2), "0"}
+}
+
+// stripOf paints a colour map as a strip, 1 on top.
+func stripOf(m *picture.ColourMap) image.Image {
 	img := image.NewRGBA(image.Rect(0, 0, 1, len(m.Table)))
 	for i, c := range m.Table {
 		img.SetRGBA(0, len(m.Table)-1-i, c)
 	}
-	s.strip.Image = img
-	s.Refresh()
+	return img
 }
 
 func (s *scaleBar) mark(values []float64) {
@@ -53,8 +80,8 @@ func (s *scaleBar) mark(values []float64) {
 func (s *scaleBar) CreateRenderer() fyne.WidgetRenderer {
 	r := &scaleBarRenderer{s: s}
 	r.objects = []fyne.CanvasObject{s.strip}
-	for i, text := range []string{"1", "0.5", "0"} {
-		r.numbers[i] = canvas.NewText(text, color.Transparent)
+	for i := range r.numbers {
+		r.numbers[i] = canvas.NewText("", color.Transparent)
 		r.objects = append(r.objects, r.numbers[i])
 	}
 	for i := range r.marks {
@@ -87,16 +114,17 @@ func (r *scaleBarRenderer) Layout(size fyne.Size) {
 		t.Resize(text)
 	}
 	for i, m := range r.marks {
-		m.Hidden = i >= len(r.s.marks)
+		m.Hidden = i >= len(r.s.marks) || r.s.scale.Colours == nil
 		if !m.Hidden {
-			m.Move(fyne.NewPos(-3, air+high*float32(1-r.s.marks[i])-1))
+			m.Move(fyne.NewPos(-3, air+high*float32(1-min(1, max(0, r.s.marks[i])))-1))
 			m.Resize(fyne.NewSize(strip+6, 2))
 		}
 	}
 }
 
 func (r *scaleBarRenderer) Refresh() {
-	for _, t := range r.numbers {
+	for i, t := range r.numbers {
+		t.Text = r.s.numbers()[i]
 		t.Color, t.TextSize = themed(colourDim), theme.CaptionTextSize()
 	}
 	for _, m := range r.marks {

@@ -88,6 +88,9 @@ func (w *window) tellPlaces() {
 			tell(fmt.Sprintf("map %d %d", i, j), w.grid.maps[i][j], 0.5)
 		}
 	}
+	for i, c := range w.grid.row {
+		tell(fmt.Sprintf("row %d", i), c, 0.5)
+	}
 	tell("solid", w.solid, 0.5)
 	tell("strip", w.grid.strip, 0.5)
 	for _, d := range w.doors {

@@ -52,6 +52,8 @@ type window struct {
 	tilt     *numberField
 	turn     *numberField
 	head     *numberField
+	shines   *chooser        // the light of true colour
+	shining  *fyne.Container // with its name, where a row shows colour
 	solid    *solidView
 	facts    *factTable
 	from     *fromPlot
@@ -142,6 +144,8 @@ func (w *window) build() {
 	w.tilt.read, w.tilt.commit = readTilt, w.setTilt
 	w.grid.onTilt = func(a facets.Angle) { w.say(w.setTilt(a.Degrees())) }
 	w.head = degrees(func(s *trace.Settings, a facets.Angle) { s.Head = a }, 60, "the half-angle of the viewer's head", 1)
+	w.shines = newChooser(theme.SizeNameText, w.lightItems)
+	w.grid.onRow = w.refreshLight
 	w.turn = newNumberField(func(s string) (float64, error) { return model.ParseNumber(s, "") },
 		func(v float64) string { return fmt.Sprintf("%.4g", v) }, 1)
 	w.turn.commit = func(v float64) error {
@@ -250,6 +254,9 @@ func (w *window) lookPane() fyne.CanvasObject {
 	}
 	view := container.NewHBox(word("Tilted"), field(w.tilt), word("° toward index"), field(w.turn), gap(14),
 		word("Viewer's head"), field(w.head), word("°"))
+	w.shining = container.NewHBox(gap(14), word("Colour under"), w.shines)
+	w.shining.Hide()
+	view.Add(w.shining)
 	return pane(container.New(layout.NewCustomPaddedLayout(8, 8, 14, 6),
 		container.NewBorder(container.New(layout.NewCustomPaddedLayout(0, 8, 0, 0), view), nil, nil, nil, w.grid.box)))
 }
@@ -468,6 +475,22 @@ func (w *window) refreshLight() {
 	turn := s.View.Turn.Radians() / (2 * math.Pi) * float64(w.bench.Doc.Plan().Gear)
 	w.turn.show(turn)
 	w.light.setText(w.bench.Look.LightInWords())
+	w.shines.setText(model.LightName(w.bench.Look.Light()))
+	setVisible(w.shining, w.bench.Look.ShowsColour())
+}
+
+// lightItems lists the lights that the stone can be seen under in true colour.
+func (w *window) lightItems() []*fyne.MenuItem {
+	var items []*fyne.MenuItem
+	for _, name := range model.LightNames() {
+		item := fyne.NewMenuItem(model.LightName(name), func() {
+			w.say(w.bench.Look.SetLight(name))
+			w.refreshLight()
+		})
+		item.Checked = name == w.bench.Look.Light()
+		items = append(items, item)
+	}
+	return items
 }
 
 func (w *window) refreshPointer() {

@@ -1,6 +1,7 @@
 package ui
 
 import (
+	"fmt"
 	"math"
 	"os"
 	"path/filepath"
@@ -326,7 +327,7 @@ func TestPointingAsksAllMaps(t *testing.T) {
 		for j := range columns {
 			m := r.grid.maps[i][j]
 			want, ok := r.bench.Look.UnderPointer(i, j)
-			if !m.crossed || !ok || !strings.HasPrefix(m.value, formatShare(want)) {
+			if !m.crossed || !ok || !strings.HasPrefix(m.value, fmt.Sprintf("%.3f", want)) {
 				t.Errorf("map %d %d: cross-hair %v, number %q, want %v", i, j, m.crossed, m.value, want)
 			}
 		}

@@ -1,0 +1,60 @@
+package ui
+
+import (
+	"strings"
+	"testing"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/test"
+
+	"pavilight/testdata"
+)
+
+// choose picks the item of that label from a chooser's menu.
+func choose(t *testing.T, items []*fyne.MenuItem, label string) {
+	t.Helper()
+	for _, i := range items {
+		if i.Label == label {
+			i.Action()
+			return
+		}
+	}
+	t.Fatalf("no item %q", label)
+}
+
+func TestRowsShowPathLengthAndColour(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	r.refined(t)
+	if r.shining.Visible() {
+		t.Error("a light is offered that lights nothing")
+	}
+	choose(t, r.grid.quantityItems(0), "Path length")
+	choose(t, r.grid.quantityItems(1), "True colour")
+	if r.grid.maps[0][0].picture.Translucency == 0 {
+		t.Error("maps that are not known yet look as if they were")
+	}
+	choose(t, r.lightItems(), "small lamps")
+	if !r.shining.Visible() || r.shines.text != "small lamps" {
+		t.Errorf("the light: offered %v, %q", r.shining.Visible(), r.shines.text)
+	}
+	r.refined(t)
+	if r.grid.maps[0][0].picture.Translucency != 0 || r.grid.maps[1][2].picture.Translucency != 0 {
+		t.Error("maps that are known look as if they were not")
+	}
+	if got := r.grid.scales[0].numbers(); got[0] == "1" || got[0] == "" || got[2] != "0" {
+		t.Errorf("the scale of the path length reads %v", got)
+	}
+	if got := r.grid.scales[1].numbers(); got != [3]string{} {
+		t.Errorf("colours have a scale: %v", got)
+	}
+	at := fyne.CurrentApp().Driver().AbsolutePositionForObject(r.grid.maps[1][0])
+	test.MoveMouse(r.win.Canvas(), at.AddXY(90, 90))
+	for i, want := range []string{" mm", "Y "} {
+		if got := r.grid.maps[i][0].value; !strings.Contains(got, want) {
+			t.Errorf("row %d tells %q under the pointer", i, got)
+		}
+	}
+	if r.bench.Look.StripMeaning()[:18] != "mean light return," {
+		t.Errorf("the strip shows %q", r.bench.Look.StripMeaning())
+	}
+}
