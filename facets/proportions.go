@@ -196,7 +196,7 @@ func (p *Proportions) check() Faults {
 		i := slices.IndexFunc(known, func(k Proportion) bool { return k.Name == name })
 		if i < 0 {
 			faults = append(faults, &Fault{File: file, Field: "value", Got: clip(name),
-				Why: "a " + p.Outline + " has no such value", Remedy: "use " + listProportions(known)})
+				Why: "the outline " + p.Outline + " has no such value", Remedy: "use " + listProportions(known)})
 			continue
 		}
 		k := known[i]

@@ -85,6 +85,7 @@ func TestBadPlans(t *testing.T) {
 		{"not UTF-8", "plan = 1\nname = \"\xff\"\n", []string{"0 : not text in UTF-8"}},
 		{"too long", "# " + strings.Repeat("x", MaxPlanBytes) + "\n", []string{"0 : larger than 1 MiB"}},
 		{"not TOML", change("width_mm = 6", "width_mm = = 6"), []string{"4 : not TOML"}},
+		{"a comma in a number", change("width_mm = 6", "width_mm = 6,5"), []string{"4 : number has a comma"}},
 		{"a key twice", change("gear = 96", "gear = 96\ngear = 64"), []string{"6 : not TOML"}},
 		{"a plan of another version", change("plan = 1", "plan = 2"),
 			[]string{"1 : version of the plan file is not known"}},

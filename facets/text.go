@@ -168,8 +168,21 @@ func notTOML(data []byte, file string, err error) *Fault {
 		f.Line, _ = de.Position()
 		f.Field, f.Got = "line", lineOf(data, f.Line)
 		f.Remedy = "correct this line"
+		if decimalComma(f.Got) {
+			f.Why, f.Remedy = "this number has a comma", "write decimals with a point, as in 41.5"
+		}
 	}
 	return f
+}
+
+// decimalComma reports whether a line gives a number as 41,5.
+func decimalComma(line string) bool {
+	_, value, _ := strings.Cut(line, "=")
+	value, _, _ = strings.Cut(value, "#")
+	whole, part, ok := strings.Cut(strings.TrimSpace(value), ",")
+	_, err := strconv.Atoi(whole)
+	_, errPart := strconv.ParseUint(part, 10, 64)
+	return ok && err == nil && errPart == nil
 }
 
 // shareText gives each block its part of the text. The comments right above a

@@ -68,13 +68,12 @@ type UnknownError struct {
 	Known   []string // every key, in the library's order
 }
 
-// Error suggests the nearest key and lists the known ones.
+// Error suggests the nearest key, or lists the known ones where none is near.
 func (e *UnknownError) Error() string {
-	suggestion := ""
 	if e.Nearest != "" {
-		suggestion = fmt.Sprintf("did you mean %q? ", e.Nearest)
+		return fmt.Sprintf("unknown material %q; did you mean %q? the material table lists all", e.Key, e.Nearest)
 	}
-	return fmt.Sprintf("unknown material %q; %sknown are %s", e.Key, suggestion, strings.Join(e.Known, ", "))
+	return fmt.Sprintf("unknown material %q; known are %s", e.Key, strings.Join(e.Known, ", "))
 }
 
 // unknown makes the error for a key that was not found.
@@ -89,6 +88,15 @@ func (l *Library) unknown(key, wanted string) *UnknownError {
 		for _, name := range slices.Concat([]string{m.Key, m.Name}, m.Names) {
 			if slips := slipsBetween(wanted, strings.ToLower(name)); slips < nearest {
 				nearest, e.Nearest = slips, m.Key
+			}
+		}
+	}
+	words := strings.Fields(wanted)
+	for i := len(words) - 1; i >= 0 && len(words) > 1 && e.Nearest == ""; i-- { // a kind, such as white topaz
+		for _, m := range l.materials {
+			if m.called(words[i]) {
+				e.Nearest = m.Key
+				break
 			}
 		}
 	}

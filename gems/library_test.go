@@ -26,7 +26,7 @@ func TestFind(t *testing.T) {
 func TestFindUnknown(t *testing.T) {
 	for asked, nearest := range map[string]string{
 		"corndum": "corundum", "daimond": "diamond", "qartz": "quartz", "saphire": "corundum", "tourmalin": "tourmaline",
-		"wter": "water", "unobtainium": "", "": "", "###": "",
+		"wter": "water", "white topaz": "topaz", "Paraiba tourmaline": "tourmaline", "unobtainium": "", "": "", "###": "",
 	} {
 		m, err := Find(asked)
 		var unknown *UnknownError
@@ -37,9 +37,10 @@ func TestFindUnknown(t *testing.T) {
 			t.Errorf("%q: nearest is %q, want %q", asked, unknown.Nearest, nearest)
 		}
 		text := err.Error()
-		suggests := nearest == "" || strings.Contains(text, "did you mean")
-		if !suggests || !strings.Contains(text, "diamond, ") || !strings.Contains(text, ", water, ") {
-			t.Errorf("%q: message does not suggest or list: %s", asked, text)
+		suggests := nearest != "" && strings.Contains(text, fmt.Sprintf("did you mean %q", nearest))
+		lists := strings.Contains(text, "diamond, ") && strings.Contains(text, ", water, ")
+		if suggests == lists || suggests != (nearest != "") {
+			t.Errorf("%q: message suggests %v, lists %v, want one of them: %s", asked, suggests, lists, text)
 		}
 	}
 }

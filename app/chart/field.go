@@ -146,7 +146,7 @@ next:
 
 // fieldLegend says what is drawn, and names the points.
 func fieldLegend(f *tune.Field, o FieldChart) []string {
-	lines := []string{"Cross: as it stands. Circle: the best. Black line: within 1 % of the best. Dashes: the ridge. White lines: equal " + o.Goal + "."}
+	lines := []string{"Cross: as it stands. Circle: the best. Black line: within 1 % of the best. Dashes: the ridge. White lines: equal " + o.Goal + ". Light grey: no such stone can be cut, or it breaks a limit."}
 	if f.Done < 1 {
 		lines = append(lines, strconv.Itoa(int(100*f.Done))+" % of the cells are seen so far.")
 	}

@@ -56,6 +56,6 @@ func Spread(title string, about []string, name string, values []float64, s tune.
 	p.Line(drawing.Style{Stroke: black, Width: 0.5}, drawing.Point{X: at(s.Plan), Y: top}, drawing.Point{X: at(s.Plan), Y: base})
 	p.Write(bodyType, black, drawing.Middle, drawing.Point{X: at((least + most) / 2), Y: base + 4.5 + bodyType.Height()}, name)
 	p.Write(bodyType, black, drawing.Left, drawing.Point{X: chartMargin, Y: base + 14},
-		"Thick line: the plan without errors. Dashes: 5, 50 and 95 of 100 stones lie below.")
+		"Bars: how many stones. Thick line: the plan without errors. Dashes: 5, 50 and 95 of 100 stones lie below.")
 	return p
 }

@@ -128,7 +128,7 @@ func (s *subject) carats() *float64 {
 const rowName = 16
 
 func printCheck(w io.Writer, s *subject, r *checkResult) {
-	fmt.Fprintf(w, "%s: a closed convex solid of %d facets\n\n", s.name, len(r.Facets))
+	fmt.Fprintf(w, "%s: a closed convex solid of %d facets, no fault found\n\n", s.name, len(r.Facets))
 	row := func(name, format string, args ...any) {
 		for i, arg := range args {
 			if v, ok := arg.(float64); ok && math.Abs(v) < 0.0005 {

@@ -29,7 +29,7 @@ type cutCommand struct {
 	Machine  string   `type:"word" placeholder:"NAME" help:"The machine that the numbers are for: its name in the folder of machines, or its file (.toml)."`
 	Paper    string   `default:"a4" type:"word" placeholder:"NAME" help:"The paper: a4, letter or a5 (${default})."`
 	Large    bool     `help:"Set type a quarter larger."`
-	Order    string   `default:"lap" type:"word" placeholder:"NAME" help:"The order of a tier's indices: lap, as they follow on the gear, or opposites first (${default})."`
+	Order    string   `default:"lap" type:"word" placeholder:"NAME" help:"The order of a tier's indices: lap, as they follow on the gear, or opposites, each facet before the one that faces it (${default})."`
 	Gears    string   `type:"word" placeholder:"N,..." help:"Add the indices on these gears, the facets that do not fit marked."`
 	LeaveOut string   `name:"leave-out" type:"word" placeholder:"PARTS" help:"Make a pupil's copy without these parts, and a teacher's copy beside it: angles, indices, stops, with commas between."`
 	As       string   `default:"pdf" type:"word" placeholder:"KINDS" help:"What to write: pdf, svg, png, with commas between; svg and png give a file a page (${default})."`

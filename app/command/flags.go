@@ -13,6 +13,7 @@ import (
 
 	"github.com/alecthomas/kong"
 
+	"pavilight/facets"
 	"pavilight/trace"
 )
 
@@ -61,7 +62,10 @@ func run(ctx context.Context, args []string, env Environment, out io.Writer) err
 		kong.Description(description),
 		kong.Writers(out, env.Stderr),
 		kong.NoDefaultHelp(),
-		kong.Vars{"lights": strings.Join(trace.LightNames(), ", "), "illuminants": strings.Join(trace.IlluminantNames(), ", ")},
+		kong.Vars{
+			"lights": strings.Join(trace.LightNames(), ", "), "illuminants": strings.Join(trace.IlluminantNames(), ", "),
+			"outlines": strings.Join(facets.Outlines(), ", "),
+		},
 		kong.ConfigureHelp(kong.HelpOptions{Compact: true, WrapUpperBound: 100}),
 		kong.NamedMapper("number", kong.MapperFunc(decodeNumber)),
 		kong.NamedMapper("word", kong.MapperFunc(decodeWord)),

@@ -121,7 +121,7 @@ func printGems(w io.Writer, materials []*gems.Material, rows []gemRow) {
 
 // printGem prints a material's page, its sources numbered below it.
 func printGem(w io.Writer, r gemRow) {
-	const label = 18 // width of the first column
+	const label = 20 // width of the first column
 	var sources []gems.Source
 	numbered := func(s gems.Source) string {
 		if s == "" {

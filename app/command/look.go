@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 	"text/tabwriter"
@@ -365,12 +366,12 @@ func remarks(s *subject, doubly bool, result *trace.Result) []string {
 	}
 	var fitted []string
 	for _, m := range append([]*gems.Material{s.material}, media(result)...) {
-		if m.Fitted() && m.Group != gems.Plainly {
+		if m.Fitted() && m.Group != gems.Plainly && !slices.Contains(fitted, m.Name) {
 			fitted = append(fitted, m.Name)
 		}
 	}
 	if len(fitted) > 0 {
-		all = append(all, "dispersion fitted through fewer published numbers: "+strings.Join(fitted, ", "))
+		all = append(all, "index over the spectrum drawn through a few published numbers: "+strings.Join(fitted, ", "))
 	}
 	return all
 }
@@ -433,7 +434,9 @@ func printLook(w io.Writer, s *subject, scene trace.Scene, r *lookResult, result
 		printTiers(w, result.Columns[i].Medium.Name+dishWord(r.Media[i].Arrangement), r.Media[i].Tiers)
 	}
 	rays := float64(result.Rays)
-	fmt.Fprintf(w, "\nShares of one viewing ray, ± the standard error; the first six sum to 1. "+
+	fmt.Fprintf(w, "\nShares of one viewing ray, ± the standard error; the six from surface to unresolved sum to 1.\n"+
+		"Leaky area: where more than half of the light leaks. Windowed area: where more than half leaks at the first\n"+
+		"facet of the pavilion, so that one sees through. Lit: how bright the stone looks beside white paper, which is 1.\n"+
 		"%s rays in %.2f s.\n", thousands(rays), result.Elapsed.Seconds())
 }
 

@@ -17,8 +17,8 @@ import (
 type subjectFlags struct {
 	Plan        string  `arg:"" optional:"" help:"A cut plan (.toml) or a scan (.stl, .obj, .ply); without it the bundled stone."`
 	Round       string  `type:"word" placeholder:"K=V,..." help:"In place of PLAN, a round brilliant by its measured proportions: table=56,crown=34,pavilion=40.5,star=50,lower=75,girdle=3,culet=0.5 (percent and degrees)."`
-	Outline     string  `type:"word" placeholder:"NAME" help:"In place of PLAN, a stone of this outline, by --proportions."`
-	Proportions string  `type:"word" placeholder:"K=V,..." help:"The measured proportions of --outline."`
+	Outline     string  `type:"word" placeholder:"NAME" help:"In place of PLAN, a stone of this outline, by --proportions: ${outlines}."`
+	Proportions string  `type:"word" placeholder:"K=V,..." help:"The measured proportions of --outline, named as for --round: table=60,crown=35,pavilion=42,ratio=1.3; a wrong name is answered by all that the outline has."`
 	Material    string  `type:"word" placeholder:"NAME" help:"What the stone is made of, in place of what the plan says."`
 	Hull        bool    `help:"Take the convex hull of a scan that has dents or holes."`
 	Width       float64 `type:"number" least:"0.1" most:"1000" unit:"mm" placeholder:"MM" help:"The stone's width, 0.1 to 1000 mm, in place of what the plan says."`
@@ -66,7 +66,7 @@ func (f *subjectFlags) oneSource() error {
 	case f.Round != "" && (f.Outline != "" || f.Proportions != ""):
 		return commandFaultf("--round and --outline are two stones; leave one out")
 	case f.Outline != "" && f.Proportions == "":
-		return commandFaultf("--outline %s needs --proportions beside it", f.Outline)
+		return commandFaultf("--outline %s needs --proportions beside it, such as --proportions table=60,crown=35,pavilion=42", f.Outline)
 	case f.Proportions != "" && f.Outline == "":
 		return commandFaultf("--proportions needs --outline beside it")
 	default:

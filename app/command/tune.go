@@ -34,7 +34,7 @@ type tuneCommand struct {
 
 	Keep    string `type:"word" placeholder:"FILE" help:"Remember in this file what was seen; a run that was stopped goes on from it, one that ended is shown again."`
 	Write   string `type:"word" placeholder:"FILE" help:"Write the plan that was found into this file (.toml), comments kept."`
-	Out     string `type:"word" placeholder:"DIR" help:"Write pictures and tables into this folder."`
+	Out     string `type:"word" placeholder:"DIR" help:"Write the pictures and tables of --field, --front or --tolerance into this folder."`
 	CSV     bool   `name:"csv" help:"Print the results as CSV."`
 	Seed    uint64 `default:"1" type:"number" placeholder:"N" help:"Seed of the random numbers; the same seed gives the same results (${default})."`
 	Workers int    `type:"number" least:"0" most:"1024" unit:"(0 for all cores)" placeholder:"N" help:"How many cores may trace, 0 to 1024; 0 for all (0)."`
@@ -103,6 +103,8 @@ func (k *tuneCommand) work() (func(*tuning) error, error) {
 		return nil, commandFaultf("--write needs one plan that was found; %s finds none", asked[0])
 	case k.Write != "" && (k.Round != "" || k.Outline != ""):
 		return nil, commandFaultf("--write writes a plan, and proportions are none; the values are printed")
+	case k.Out != "" && (len(asked) == 0 || k.To != ""):
+		return nil, commandFaultf("--out is for the pictures of --field, --front and --tolerance; --write FILE.toml keeps the plan that is found")
 	case k.Refs != "" && k.To == "":
 		return nil, commandFaultf("--refs belongs to --to")
 	case k.Slips != "" && k.Tolerance == 0:

@@ -6,6 +6,7 @@ import (
 	"io"
 	"math"
 	"path/filepath"
+	"slices"
 	"strconv"
 	"strings"
 	"text/tabwriter"
@@ -304,6 +305,7 @@ func (t *tuning) printOutcome(o *tune.Outcome) {
 	if len(t.problem.Goal.Aims) > 1 || t.problem.Steady > 0 {
 		row("goal", func(tr *tune.Trial) (float64, float64) { return tr.Score, tr.Error })
 	}
+	t.printBodies(tab, o)
 	tab.Flush()
 	fmt.Fprintln(w)
 	switch {
@@ -329,6 +331,30 @@ func (t *tuning) printOutcome(o *tune.Outcome) {
 	if t.Write != "" {
 		fmt.Fprintf(w, "Written to %s\n", t.Write)
 	}
+}
+
+// printBodies adds what the change does to the stone's body: its weight at the plan's
+// width, and its depth. From rough the weight depends on what fits, and is a goal.
+func (t *tuning) printBodies(w io.Writer, o *tune.Outcome) {
+	if t.problem.Rough != nil {
+		return
+	}
+	weights, depths := "weight, ct", "depth, % of width"
+	for _, tr := range []*tune.Trial{&o.Start, &o.Best} {
+		weight, depth := "–", "–"
+		if stone, err := t.pattern.Build(t.names(), tr.Values); err == nil {
+			m := stone.Measure()
+			depth = fmt.Sprintf("%.2f", m.DepthPercent)
+			if t.material.Density > 0 {
+				weight = fmt.Sprintf("%.3f", m.Carats(t.material.Density))
+			}
+		}
+		weights, depths = weights+"\t"+weight, depths+"\t"+depth
+	}
+	if !slices.ContainsFunc(t.problem.Goal.Aims, func(a tune.Aim) bool { return a.Measure == tune.Weight }) {
+		fmt.Fprintln(w, weights)
+	}
+	fmt.Fprintln(w, depths)
 }
 
 // printNearby tells what a small error costs at the best.
@@ -458,9 +484,9 @@ func (t *tuning) field() error {
 			fmt.Fprintf(w, "as it stands   %s %s, %s %s: %s\n", f.X.Name, valueOf(f.X, f.Now.Values[0]), f.Y.Name, valueOf(f.Y, f.Now.Values[1]), withError(f.Now.Score, f.Now.Error))
 		}
 		fmt.Fprintf(w, "best cell      %s %s, %s %s: %s\n", f.X.Name, valueOf(f.X, b.Values[0]), f.Y.Name, valueOf(f.Y, b.Values[1]), withError(b.Score, b.Error))
-		fmt.Fprintf(w, "near the best  %d of %d cells are within 1 %% of it\n", count, len(f.Trials))
+		fmt.Fprintf(w, "near the best  within 1 %% of it, cells: %d of %d\n", count, len(f.Trials))
 		if len(ridge.Points) >= 3 {
-			fmt.Fprintf(w, "ridge          %s changes by %.3f ± %.3f for each 1 of %s, from %s to %s\n", f.X.Name, ridge.Slope, ridge.SlopeError, f.Y.Name,
+			fmt.Fprintf(w, "ridge          the best %s changes by %.3f ± %.3f for each 1 that %s does, from %s to %s\n", f.X.Name, ridge.Slope, ridge.SlopeError, f.Y.Name,
 				valueOf(f.Y, ridge.Points[0].Y), valueOf(f.Y, ridge.Points[len(ridge.Points)-1].Y))
 		}
 		t.printWritten()

@@ -131,7 +131,7 @@ func TestTunePrints(t *testing.T) {
 	plan := file(t, "tent.toml", small)
 	quick := []string{"tune", plan, "--vary", "P=41..43", "--step", "0.5"}
 	got := runCommand(quick...)
-	for _, want := range []string{"Small Tent, quartz", "light return in air, face-up, head 10°", "steeper", "as it stands", "more than chance"} {
+	for _, want := range []string{"Small Tent, quartz", "light return in air, face-up, head 10°", "steeper", "as it stands", "more than chance", "weight, ct", "depth, % of width"} {
 		if !strings.Contains(got.stdout, want) {
 			t.Errorf("%q is missing:\n%s", want, got.stdout)
 		}
@@ -243,6 +243,7 @@ func TestTuneFaults(t *testing.T) {
 		{[]string{plan, "--front", "--field", "3x3"}, CommandFault, "different questions"},
 		{[]string{plan, "--field", "4x4", "--write", "x.toml"}, CommandFault, "finds none"},
 		{[]string{plan, "--write", "x.txt"}, CommandFault, "ends in .toml"},
+		{[]string{plan, "--out", t.TempDir()}, CommandFault, "--write FILE.toml keeps"},
 		{[]string{plan, "--write", "no/such/folder/x.toml"}, OwnFault, "cannot be written"},
 		{[]string{plan, "--slips", "angle=1"}, CommandFault, "belongs to --tolerance"},
 		{[]string{plan, "--tolerance", "20", "--slips", "wobble=1"}, CommandFault, "there is no error"},

@@ -2,6 +2,7 @@ package command
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 	"text/tabwriter"
 
@@ -101,7 +102,7 @@ func (t *tuning) tolerance() error {
 		rows = append(rows, []string{fmt.Sprint(i + 1), exact(d.Return), exact(d.Leaky), exact(d.GapMM), exact(d.EdgeMM), fmt.Sprint(d.Lost)})
 		values = append(values, d.Return)
 	}
-	page := chart.Spread(t.name, []string{t.stoneLine() + ", " + t.caseWords(), fmt.Sprintf("%d stones cut with errors: %s", len(r.Draws), slipWords(machine))},
+	page := chart.Spread(t.name, []string{fmt.Sprintf("%s, %.2f mm, %s", t.material.Name, t.width, t.caseWords()), fmt.Sprintf("%d stones cut with errors: %s", len(r.Draws), slipWords(machine))},
 		"light return", values, r.Return)
 	if err := t.picture("tolerance", page, rows); err != nil {
 		return err
@@ -300,6 +301,9 @@ func (t *tuning) move() error {
 		}
 		tab.Flush()
 		fmt.Fprintf(w, "\nReferences of the tangent rule: %s.\n", source)
+		if slices.ContainsFunc(m.Passed[:], func(list []tune.Under) bool { return len(list) > 0 }) {
+			fmt.Fprintln(w, "Light that comes straight down leaks at these tiers; critical angles at the stone's lowest index:")
+		}
 		for i, c := range result.Stones {
 			for _, line := range passedWords(m.Passed[i]) {
 				fmt.Fprintf(w, "%s %s: %s.\n", c.Material, c.How, line)

@@ -34,7 +34,8 @@ type yield struct {
 	Centre     mgl64.Vec3 `json:"centre_mm"` // in the rough's frame
 	Notes      []string   `json:"notes,omitempty"`
 
-	tried int // orientations
+	planned float64 // width as it stands, mm
+	tried   int     // orientations
 }
 
 // yield fits the stone into the rough that the flags or the plan name; nil where there
@@ -64,7 +65,7 @@ func (f *roughFlags) yield(s *subject) (*yield, error) {
 	if err != nil {
 		return nil, inputFault(err)
 	}
-	y := &yield{Rough: roughWords(ref), WidthMM: fit.WidthMM, LengthMM: fit.LengthMM, DepthMM: fit.DepthMM, Share: fit.Yield, Centre: fit.Centre, Notes: fit.Notes, tried: fit.Tried}
+	y := &yield{Rough: roughWords(ref), WidthMM: fit.WidthMM, LengthMM: fit.LengthMM, DepthMM: fit.DepthMM, Share: fit.Yield, Centre: fit.Centre, Notes: fit.Notes, planned: s.measures.WidthMM, tried: fit.Tried}
 	if rough.Scan != nil {
 		y.Notes = append(slices.Clone(rough.Scan.Notes), y.Notes...)
 	}
@@ -96,8 +97,14 @@ func (y *yield) print(w io.Writer) {
 	if y.Carats != nil {
 		weight = fmt.Sprintf(", %.3f ct", *y.Carats)
 	}
-	fmt.Fprintf(w, "\nfrom %s: %.3f mm wide, %.3f long, %.3f deep%s, %.1f %% of the rough\n", y.Rough, y.WidthMM, y.LengthMM, y.DepthMM, weight, 100*y.Share)
-	fmt.Fprintf(w, "the table looks %.1f° from the rough's z, toward azimuth %.1f°; the best of %d orientations that were tried\n", y.TiltDeg, y.AzimuthDeg, y.tried)
+	fmt.Fprintf(w, "\nthe largest stone of this shape from %s: %.3f mm wide, %.3f long, %.3f deep%s, %.1f %% of the rough\n", y.Rough, y.WidthMM, y.LengthMM, y.DepthMM, weight, 100*y.Share)
+	as := "this rough holds it"
+	if y.WidthMM < y.planned {
+		as = "this rough holds it in no orientation that was tried"
+	}
+	fmt.Fprintf(w, "as it stands the stone is %.3f mm wide: %s\n", y.planned, as)
+	fmt.Fprintf(w, "the stone's axis leans %.1f° from the rough's height, toward azimuth %.1f°; the best of %d orientations that were tried\n",
+		y.TiltDeg, y.AzimuthDeg, y.tried)
 	for _, note := range y.Notes {
 		fmt.Fprintln(w, note)
 	}

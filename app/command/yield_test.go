@@ -34,6 +34,18 @@ func TestCheckFitsIntoRough(t *testing.T) {
 	}
 }
 
+// TestCheckTellsWhatTheRoughHolds asks for a stone of 8 mm from rough on either side of it.
+func TestCheckTellsWhatTheRoughHolds(t *testing.T) {
+	for _, row := range []struct{ rough, words string }{
+		{"box:20x20x20", "8.000 mm wide: this rough holds it\n"},
+		{"box:7x7x4", "8.000 mm wide: this rough holds it in no orientation"},
+	} {
+		if got := runCommand("check", "--rough", row.rough); got.status != Done || !strings.Contains(got.stdout, row.words) {
+			t.Errorf("%s: exit status %d, %s", row.rough, got.status, got.stdout)
+		}
+	}
+}
+
 func bundledText(t *testing.T) string {
 	t.Helper()
 	text, err := os.ReadFile("../../testdata/plans/round.toml")

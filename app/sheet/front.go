@@ -93,7 +93,11 @@ func (l *press) factList() []fact {
 		list = append(list, fact{"Machine", s.machineWords()})
 	}
 	if s.Plan.Notes != "" && !s.LeaveOut.Any() {
-		list = append(list, fact{"Notes", strings.Join(strings.Fields(s.Plan.Notes), " ")})
+		notes := strings.Join(strings.Fields(s.Plan.Notes), " ")
+		if key := s.Plan.Material.Key; key != "" && key != s.Material.Key {
+			notes = "(Written for " + key + ", not for this material.) " + notes
+		}
+		list = append(list, fact{"Notes", notes})
 	}
 	return list
 }

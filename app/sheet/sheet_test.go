@@ -729,6 +729,9 @@ func TestDiamondIsALightModel(t *testing.T) {
 			t.Errorf("the sheet still says %q", word)
 		}
 	}
+	if !strings.Contains(text, "Written for corundum, not for this material") {
+		t.Error("the notes of a plan for corundum stand beside diamond as if they spoke of it")
+	}
 }
 
 func TestBooklet(t *testing.T) {
