@@ -21,6 +21,7 @@ type Ray struct {
 	Path   *trace.Path // nil where there is none
 	Why    string      // there is no path
 	Step   int         // the bounce picked in the list; -1 for none
+	Beside *Ray        // from the same place in another column's surrounding; nil for none
 }
 
 // Follow follows the ray through a place of the maps in one column's surrounding.
@@ -28,7 +29,26 @@ func (l *Look) Follow(column int, x, y float64) {
 	if l.Frame == nil || column >= len(l.Frame.Around) {
 		return
 	}
-	l.Ray = &Ray{Column: column, X: min(1, max(0, x)), Y: min(1, max(0, y)), Step: -1}
+	beside := (*Ray)(nil)
+	if l.Ray != nil && l.Ray.Beside != nil && l.Ray.Beside.Column != column {
+		beside = l.Ray.Beside
+	}
+	l.Ray = &Ray{Column: column, X: min(1, max(0, x)), Y: min(1, max(0, y)), Step: -1, Beside: beside}
+	l.followAgain()
+}
+
+// FollowBeside follows a second ray from the same place in another column's
+// surrounding; the ray's own column, or a negative one, lets the second go.
+func (l *Look) FollowBeside(column int) {
+	if l.Ray == nil || l.Frame == nil || column >= len(l.Frame.Around) {
+		return
+	}
+	r := *l.Ray
+	r.Beside = nil
+	if column >= 0 && column != r.Column {
+		r.Beside = &Ray{Column: column, Step: -1}
+	}
+	l.Ray = &r
 	l.followAgain()
 }
 
@@ -58,7 +78,20 @@ func (l *Look) followAgain() {
 	if l.Ray == nil || l.Frame == nil {
 		return
 	}
-	f, r := l.Frame, *l.Ray
+	r := l.followed(*l.Ray)
+	if r.Beside != nil {
+		beside := *r.Beside
+		beside.X, beside.Y, beside.Step = r.X, r.Y, -1
+		beside = l.followed(beside)
+		r.Beside = &beside
+	}
+	l.Ray = &r
+	l.onChange(RayChanged)
+}
+
+// followed returns a ray with its path through the stone that the maps show now.
+func (l *Look) followed(r Ray) Ray {
+	f := l.Frame
 	r.Around, r.Stone, r.Path, r.Why = f.Around[r.Column], f.Subject.Stone, nil, ""
 	scene := trace.Scene{Stone: f.Subject.Stone, Material: f.Subject.Material, Surroundings: surroundings(f.Around)}
 	switch path, ok, err := trace.Follow(scene, r.Column, f.Settings, r.X, r.Y); {
@@ -70,8 +103,7 @@ func (l *Look) followAgain() {
 		r.Path = path
 		r.Step = min(r.Step, len(path.Bounces)-1)
 	}
-	l.Ray = &r
-	l.onChange(RayChanged)
+	return r
 }
 
 // Title says what is followed, in which surrounding, against which critical angle.
@@ -144,8 +176,16 @@ func facetName(stone *facets.Stone, facet int) string {
 	return fmt.Sprintf("%s@%g", f.Tier, math.Round(f.Index*100)/100)
 }
 
-// Text tells the whole ray as a table for the clipboard or a file, columns apart by tabs.
+// Text tells the whole ray as a table for the clipboard or a file, columns apart by
+// tabs, and after it the one beside.
 func (r *Ray) Text() string {
+	if r.Beside != nil {
+		return r.text() + "\n" + r.Beside.text()
+	}
+	return r.text()
+}
+
+func (r *Ray) text() string {
 	var b strings.Builder
 	fmt.Fprintln(&b, r.Title())
 	if r.Path == nil {

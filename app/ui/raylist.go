@@ -190,7 +190,7 @@ func (r *rayListRenderer) Refresh() {
 		}
 	}
 	r.mark.FillColor = themed(theme.ColorNameSelection)
-	r.mark.Hidden = len(r.l.lines) == 0
+	r.mark.Hidden = len(r.l.lines) == 0 || r.l.step < -1
 	r.frame.StrokeWidth, r.frame.StrokeColor = 0, color.Transparent
 	if r.l.focused {
 		r.frame.StrokeWidth, r.frame.StrokeColor = 2, themed(theme.ColorNameFocus)

@@ -139,7 +139,17 @@ const (
 // it stands out from the stone.
 func (s *solidView) rays() []solid.Ray {
 	var casings, lines []solid.Ray
-	for _, p := range s.ray.Stretches(0.7 * solid.Radius(s.stone)) {
+	reach := 0.7 * solid.Radius(s.stone)
+	if s.ray.Beside != nil { // in broken lines
+		for _, p := range s.ray.Beside.Stretches(reach) {
+			c := themedRGBA(theme.ColorNameForeground)
+			if !p.Inside && p.Goes != trace.Unresolved {
+				c = color.RGBAModel.Convert(entryColour(p.Goes)).(color.RGBA)
+			}
+			lines = append(lines, broken(solid.Ray{From: p.From, To: p.To, Colour: c, Width: float64(s.scale) * (1 + p.Share)}, reach/14)...)
+		}
+	}
+	for _, p := range s.ray.Stretches(reach) {
 		width := float64(s.scale) * (1 + 1.8*p.Share)
 		c := themedRGBA(theme.ColorNameForeground)
 		if !p.Inside && p.Bounce >= 0 || p.Goes == trace.Surface && !p.Inside {
@@ -155,6 +165,20 @@ func (s *solidView) rays() []solid.Ray {
 		lines = append(lines, solid.Ray{From: p.From, To: p.To, Colour: c, Width: width})
 	}
 	return append(casings, lines...)
+}
+
+// broken parts a line into dashes of that length, mm.
+func broken(r solid.Ray, dash float64) []solid.Ray {
+	along := r.To.Sub(r.From)
+	var dashes []solid.Ray
+	n := int(along.Len()/dash) + 1
+	for i := 0; i < n; i += 2 {
+		d := r
+		d.From = r.From.Add(along.Mul(float64(i) / float64(n)))
+		d.To = r.From.Add(along.Mul(float64(min(i+1, n)) / float64(n)))
+		dashes = append(dashes, d)
+	}
+	return dashes
 }
 
 // bounceLabels numbers the bounces that carry enough to be followed by eye.

@@ -61,6 +61,7 @@ type window struct {
 	rayBox   *fyne.Container
 	rayTitle *wrapped
 	ray      *rayList
+	beside   rayBeside
 
 	tuning  tuneBench
 	tuneBox fyne.CanvasObject
@@ -275,16 +276,7 @@ func (w *window) stonePane() fyne.CanvasObject {
 	under := newWord(colourDim, theme.SizeNameCaptionText, "share of returned light by angle from the eye")
 	w.factBox = container.NewVScroll(container.New(layout.NewCustomPaddedLayout(8, 8, 14, 10),
 		container.New(layout.NewCustomPaddedVBoxLayout(3), w.facts.box, gap(1), whence, under, w.from)))
-	copies := widget.NewButton("Copy", func() {
-		if r := w.bench.Look.Ray; r != nil {
-			w.app.Clipboard().SetContent(r.Text())
-			w.report("The ray is on the clipboard, as a table.")
-		}
-	})
-	closes := widget.NewButton("Let go", w.bench.Look.Unfollow)
-	w.rayBox = container.New(layout.NewCustomPaddedLayout(8, 8, 14, 10), container.NewBorder(
-		container.NewGridWrap(fyne.NewSize(stoneNarrow-24, 2*lineHeight()), w.rayTitle),
-		container.NewGridWithColumns(2, copies, closes), nil, nil, container.NewVScroll(w.ray)))
+	w.rayBox = w.buildRayBox()
 	w.rayBox.Hide()
 	return pane(container.NewBorder(top, nil, nil, nil, container.NewStack(w.factBox, w.rayBox)))
 }
@@ -462,9 +454,7 @@ func (w *window) refreshRay() {
 	if r == nil {
 		return
 	}
-	w.rayTitle.setText(r.Title())
-	lines, more := r.Lines()
-	w.ray.show(lines, more, r.Step)
+	w.showRayLists(r)
 	w.once("followed")
 }
 
