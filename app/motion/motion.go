@@ -133,7 +133,7 @@ func (j *Job) Render(ctx context.Context, report func(done float64)) ([]*image.R
 		return nil, err
 	}
 	frames := make([]*image.RGBA, j.Frames)
-	var sheet [][3]float32
+	var sheet *Sheet
 	if j.Shows == Colour {
 		var err error
 		if sheet, err = j.sheet(ctx); err != nil {
@@ -167,7 +167,7 @@ func (j *Job) Render(ctx context.Context, report func(done float64)) ([]*image.R
 func ground() color.RGBA { return color.RGBA{0x9c, 0x9c, 0x9c, 255} }
 
 // frame makes one picture.
-func (j *Job) frame(ctx context.Context, i int, sheet [][3]float32) (*image.RGBA, error) {
+func (j *Job) frame(ctx context.Context, i int, sheet *Sheet) (*image.RGBA, error) {
 	tilt, turn := j.tilt(i)
 	settings := j.settings()
 	settings.View = View(tilt, turn)
@@ -180,7 +180,7 @@ func (j *Job) frame(ctx context.Context, i int, sheet [][3]float32) (*image.RGBA
 		if err != nil {
 			return nil, err
 		}
-		traced = against(sheet, r.Columns[0].Map, settings).Image(ground())
+		traced = sheet.against(r.Columns[0].Map, settings).Image(ground())
 	} else {
 		settings.Samples = 4 * rays
 		r, err := trace.Run(ctx, scene, settings, nil)
@@ -219,7 +219,7 @@ func (j *Job) settings() trace.Settings {
 // sheet returns the white sheet that all frames are held against. The rays of every frame
 // cross the picture at the same points, with the same wavelengths; a block that fills the
 // picture is met by all of them.
-func (j *Job) sheet(ctx context.Context) ([][3]float32, error) {
+func (j *Job) sheet(ctx context.Context) (*Sheet, error) {
 	settings := j.settings()
 	var planes []facets.Plane
 	for axis := range 3 {
@@ -236,7 +236,7 @@ func (j *Job) sheet(ctx context.Context) ([][3]float32, error) {
 	if err != nil {
 		return nil, err
 	}
-	return whiteSheet(ctx, block, settings)
+	return NewSheet(ctx, block, settings)
 }
 
 func (j *Job) quantity() trace.Quantity {

@@ -70,13 +70,15 @@ func TestGreyIsGreyAtEveryPixel(t *testing.T) {
 		t.Fatal(err)
 	}
 	even := light(t, "even")
+	// LED-B4 is dark at the ends of the spectrum: some pixels get rays of such wavelengths
+	// alone, since there is one ray a pixel or none.
 	for _, spectrum := range []string{"D65", "A", "LED-B4"} {
 		s, err := trace.FindIlluminant(spectrum)
 		if err != nil {
 			t.Fatal(err)
 		}
 		scene := trace.Scene{Stone: bundled(t), Material: clear, Surroundings: trace.Around(clear), Ground: &trace.Ground{Reflectance: 0.5}}
-		still, err := Look(context.Background(), scene, trace.Settings{Light: even.Under(s), Pixels: 40, Samples: 2, Seed: 3})
+		still, err := Look(context.Background(), scene, trace.Settings{Light: even.Under(s), Pixels: 120, Samples: 1, Seed: 3}, nil)
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -93,7 +95,7 @@ func TestGreyIsGreyAtEveryPixel(t *testing.T) {
 				}
 			}
 		}
-		if inside < 700 {
+		if inside < 8000 {
 			t.Fatalf("%s: %d pixels show the stone", spectrum, inside)
 		}
 	}
@@ -112,7 +114,7 @@ func TestLookAgreesWithAppear(t *testing.T) {
 		t.Fatal(err)
 	}
 	settings.Distance, settings.Pixels, settings.Samples = 2000, 64, 4
-	still, err := Look(context.Background(), scene, settings)
+	still, err := Look(context.Background(), scene, settings, nil)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -230,7 +232,7 @@ func TestSheetOfABlockIsThatOfTheStone(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	own, err := whiteSheet(context.Background(), j.Stone, j.settings())
+	own, err := NewSheet(context.Background(), j.Stone, j.settings())
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -238,8 +240,8 @@ func TestSheetOfABlockIsThatOfTheStone(t *testing.T) {
 	middle := (n/2)*n + n/2
 	for i := middle - 5; i < middle+5; i++ {
 		for c := range 3 {
-			if d := math.Abs(float64(shared[i][c] - own[i][c])); !(d < 1e-4) {
-				t.Errorf("pixel %d: %v and %v", i, shared[i], own[i])
+			if d := math.Abs(float64(shared.xyz[i][c] - own.xyz[i][c])); !(d < 1e-4) {
+				t.Errorf("pixel %d: %v and %v", i, shared.xyz[i], own.xyz[i])
 			}
 		}
 	}

@@ -38,92 +38,135 @@ const Exposure = 2.0 / 3
 // which wavelengths fell into it. So every pixel is divided by what the same rays show
 // of a white sheet in even light of the same spectrum: where a place of the stone looks
 // alike at all wavelengths the speckle is gone whatever the number of rays. (The
-// estimate is a ratio of two means: its bias falls as the number of rays.)
-func Look(ctx context.Context, scene trace.Scene, settings trace.Settings) (*Still, error) {
+// estimate is a ratio of two means: its bias falls as the number of rays.) The sheet is
+// that of the same settings, but for the light's shape: NewSheet; nil has it made.
+func Look(ctx context.Context, scene trace.Scene, settings trace.Settings, sheet *Sheet) (*Still, error) {
 	settings.Colour, settings.Error = true, 0
 	scene.Surroundings = scene.Surroundings[:1]
 	seen, err := trace.Run(ctx, scene, settings, nil)
 	if err != nil {
 		return nil, err
 	}
-	sheet, err := whiteSheet(ctx, scene.Stone, settings)
-	if err != nil {
-		return nil, err
+	if sheet == nil {
+		if sheet, err = NewSheet(ctx, scene.Stone, settings); err != nil {
+			return nil, err
+		}
 	}
-	return against(sheet, seen.Columns[0].Map, settings), nil
+	return sheet.against(seen.Columns[0].Map, settings), nil
 }
 
 // against divides what was seen by what the same rays show of the white sheet.
-func against(sheet [][3]float32, seen *trace.Map, settings trace.Settings) *Still {
+func (sheet *Sheet) against(seen *trace.Map, settings trace.Settings) *Still {
 	s := &Still{Pixels: seen.Pixels, Span: seen.Span, XYZ: seen.XYZ(), Light: settings.Light}
 	white := settings.Light.Illuminant.White()
-	const least = 1e-3 // of the white: below, the rays of a pixel say nothing of this part
-	for i := range s.XYZ {
-		if math.IsNaN(float64(s.XYZ[i][1])) {
+	// Below this part of the white, the rays of a pixel say nothing of a tristimulus value:
+	// it is taken as in the grey of all three together.
+	const least = 1e-3
+	var holes []int // pixels of which nothing is known
+	for i, v := range s.XYZ {
+		if math.IsNaN(float64(v[1])) {
 			continue // beside the stone
 		}
-		y := 1.0
-		if w := float64(sheet[i][1]); w > least*white[1] {
-			y = float64(s.XYZ[i][1]) / w
+		w := sheet.xyz[i]
+		all := float64(w[0]) + float64(w[1]) + float64(w[2])
+		if !(all > least*(white[0]+white[1]+white[2])) {
+			holes = append(holes, i)
+			continue
 		}
-		for c := range 3 {
-			ratio := y
-			if w := float64(sheet[i][c]); w > least*white[c] {
-				ratio = float64(s.XYZ[i][c]) / w
+		grey := (float64(v[0]) + float64(v[1]) + float64(v[2])) / all
+		for c := range v {
+			ratio := grey
+			if float64(w[c]) > least*white[c] {
+				ratio = float64(v[c]) / float64(w[c])
 			}
 			s.XYZ[i][c] = float32(ratio * white[c])
 		}
 	}
+	s.fill(holes)
 	s.calm(white)
 	return s
+}
+
+// fill gives pixels the mean of those about them.
+func (s *Still) fill(holes []int) {
+	hole := make(map[int]bool, len(holes))
+	for _, i := range holes {
+		hole[i] = true
+	}
+	for _, i := range holes {
+		s.XYZ[i], _ = s.mean(s.XYZ, i, 1, func(j int) bool { return !hole[j] && s.XYZ[j][1] == s.XYZ[j][1] })
+	}
+}
+
+// mean returns the mean of the pixels about one, up to reach aside, and how many they are;
+// black where there is none.
+func (s *Still) mean(of [][3]float32, pixel, reach int, counts func(pixel int) bool) (mean [3]float32, n int) {
+	x, y := pixel%s.Pixels, pixel/s.Pixels
+	for row := max(0, y-reach); row <= min(s.Pixels-1, y+reach); row++ {
+		for column := max(0, x-reach); column <= min(s.Pixels-1, x+reach); column++ {
+			if j := row*s.Pixels + column; counts(j) {
+				for c := range mean {
+					mean[c] += of[j][c]
+				}
+				n++
+			}
+		}
+	}
+	for c := range mean {
+		mean[c] /= float32(max(n, 1))
+	}
+	return mean, n
 }
 
 // coloured tells from what part of its luminance on a pixel's X or Z differs from a grey's
 // so much that rays of different wavelengths take different ways there.
 const coloured = 0.04
 
-// calmReach is how far a coloured pixel looks about itself, pixels: less than what an eye
-// tells apart at the distance of a stone in the hand.
-const calmReach = 2
+// A place is restless where so many of the pixels up to calmReach aside, itself included,
+// are coloured. The reach is less than what an eye tells apart at the distance of a stone in
+// the hand.
+const (
+	calmReach = 2
+	restless  = 5 // of 25
+)
 
 // calm takes the speckle out of coloured places, where few rays of few wavelengths make a
-// pixel: each coloured pixel becomes the mean of the coloured ones about it. All others
-// stay as they are, and so do edges.
+// pixel: each pixel of a restless place becomes the mean of the restless ones about it. All
+// others stay as they are, and so do edges between plain places.
 func (s *Still) calm(white [3]float64) {
-	hue := make([]bool, len(s.XYZ))
+	hue, any := make([]bool, len(s.XYZ)), false
 	for i, v := range s.XYZ {
 		y := float64(v[1])
 		x, z := float64(v[0])*white[1]/white[0], float64(v[2])*white[1]/white[2]
 		hue[i] = math.Abs(x-y) > coloured*y || math.Abs(z-y) > coloured*y
+		any = any || hue[i]
+	}
+	if !any {
+		return
 	}
 	from := slices.Clone(s.XYZ)
-	n := s.Pixels
+	calmed := make([]bool, len(s.XYZ))
+	for i, v := range from {
+		if v[1] == v[1] {
+			_, n := s.mean(from, i, calmReach, func(j int) bool { return hue[j] })
+			calmed[i] = n >= restless
+		}
+	}
 	for i := range s.XYZ {
-		if !hue[i] {
-			continue
-		}
-		var sum [3]float32
-		count := float32(0)
-		for y := max(0, i/n-calmReach); y <= min(n-1, i/n+calmReach); y++ {
-			for x := max(0, i%n-calmReach); x <= min(n-1, i%n+calmReach); x++ {
-				if hue[y*n+x] {
-					for c := range sum {
-						sum[c] += from[y*n+x][c]
-					}
-					count++
-				}
-			}
-		}
-		for c := range sum {
-			s.XYZ[i][c] = sum[c] / count
+		if calmed[i] {
+			s.XYZ[i], _ = s.mean(from, i, calmReach, func(j int) bool { return calmed[j] })
 		}
 	}
 }
 
-// whiteSheet returns what the same rays show of a white sheet under the stone's outline,
-// in even light of the spectrum: a stone that cannot be seen, since it has the index of
-// what surrounds it, on a ground that sends all light back.
-func whiteSheet(ctx context.Context, stone *facets.Stone, settings trace.Settings) ([][3]float32, error) {
+// Sheet is what the rays of a picture show of a white sheet in even light.
+type Sheet struct{ xyz [][3]float32 }
+
+// NewSheet returns what the rays of the settings show of a white sheet under the stone's
+// outline, in even light of the spectrum of the settings' light: a stone that cannot be
+// seen, since it has the index of what surrounds it, on a ground that sends all light
+// back.
+func NewSheet(ctx context.Context, stone *facets.Stone, settings trace.Settings) (*Sheet, error) {
 	even, err := trace.FindLight("even")
 	if err != nil {
 		return nil, err
@@ -139,7 +182,7 @@ func whiteSheet(ctx context.Context, stone *facets.Stone, settings trace.Setting
 	if err != nil {
 		return nil, err
 	}
-	return r.Columns[0].Map.XYZ(), nil
+	return &Sheet{r.Columns[0].Map.XYZ()}, nil
 }
 
 // Image returns the picture as an eye sees it that is used to the light, on a ground of

@@ -61,7 +61,10 @@ type Condition struct {
 
 // How much is traced of what is shown small, or beside the main figures.
 const (
+	usualError    = 0.0005
+	dishSamples   = 2
 	stillEdge     = 250. / 300 // of a picture in true colour, over that of a map
+	paperEdge     = 180. / 300
 	stillSamples  = 2
 	paperWhite    = 0.8        // share of light that white paper sends back; common practice, no source
 	tiltEdge      = 110. / 300 // likewise of the maps of tilts
@@ -81,7 +84,7 @@ func (j *Job) settings() trace.Settings {
 		s.Pixels = 300
 	}
 	if s.Error == 0 {
-		s.Error = 0.0005
+		s.Error = usualError
 	}
 	return s
 }
@@ -174,7 +177,13 @@ func (f *Findings) dish(ctx context.Context, tell func(float64)) (*trace.Result,
 	if len(dishes) == 0 {
 		return nil, nil
 	}
-	return trace.Run(ctx, f.scene(dishes...), f.Job.settings(), func(r *trace.Result) { tell(r.Done) })
+	settings := f.Job.settings()
+	if settings.Error >= usualError {
+		// The general tracer takes its time: these rays suffice for maps, and bring the
+		// error to about the usual one.
+		settings.Samples = dishSamples
+	}
+	return trace.Run(ctx, f.scene(dishes...), settings, func(r *trace.Result) { tell(r.Done) })
 }
 
 // columns lines the columns up: all around first, then the dishes.
@@ -194,18 +203,27 @@ func (f *Findings) pictures(ctx context.Context) error {
 	settings := f.Job.settings()
 	settings.Pixels, settings.Samples, settings.Distance = int(stillEdge*float64(settings.Pixels)), stillSamples, motion.Distance(f.Solid)
 	scene := f.scene(trace.Surrounding{Medium: f.Job.Media[0]})
+	sheets := map[string]*motion.Sheet{} // by the light's spectrum
 	for _, light := range f.Job.Lights {
 		settings.Light = light
-		s, err := motion.Look(ctx, scene, settings)
+		sheet := sheets[light.Illuminant.Name]
+		if sheet == nil {
+			var err error
+			if sheet, err = motion.NewSheet(ctx, f.Solid, settings); err != nil {
+				return err
+			}
+			sheets[light.Illuminant.Name] = sheet
+		}
+		s, err := motion.Look(ctx, scene, settings, sheet)
 		if err != nil {
 			return err
 		}
 		f.Pictures = append(f.Pictures, s)
 	}
 	scene.Ground = &trace.Ground{Reflectance: paperWhite}
-	settings.Light = f.Job.Lights[0]
+	settings.Light, settings.Pixels = f.Job.Lights[0], int(paperEdge*float64(f.Job.settings().Pixels))
 	var err error
-	f.OnPaper, err = motion.Look(ctx, scene, settings)
+	f.OnPaper, err = motion.Look(ctx, scene, settings, nil)
 	return err
 }
 

@@ -610,7 +610,7 @@ func TestNumbersInFiles(t *testing.T) {
 			t.Errorf("JSON tells column %d otherwise", i)
 		}
 	}
-	m := f.Columns[0].Map
+	m := f.Tilts[0].Columns[0].Map // leaning, so that up and down differ
 	field := m.Field(trace.Leaked)
 	pfm := written(t, func(w io.Writer) error { return PFM(w, m, trace.Leaked) })
 	var w, h int

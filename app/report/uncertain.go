@@ -192,9 +192,8 @@ func stretch(s *facets.Stone, side facets.Side, by facets.Angle) float64 {
 // same sample points, so that little but the shape differs.
 //
 // All around, the drawn stones are traced and the standard deviation is taken. In a dish,
-// where tracing takes longer, each proportion is moved alone by its error to either side,
-// and half the differences add by their squares: the law of propagation of uncertainty
-// (JCGM 100:2008, equation 10).
+// where tracing takes longer, each proportion is moved alone by its error, and the changes
+// add by their squares: the law of propagation of uncertainty (JCGM 100:2008, equation 10).
 func (f *Findings) spread(ctx context.Context, tell func(float64)) error {
 	if err := f.Job.Measured.Fits(&f.Stone); err != nil {
 		return err
@@ -223,30 +222,33 @@ func (f *Findings) spread(ctx context.Context, tell func(float64)) error {
 	if len(dishes) == 0 {
 		return nil
 	}
-	squares := make([][]Shares, len(dishes)) // half the differences, of each proportion
+	base, err := f.shares(ctx, f.Solid, dishes)
+	if err != nil {
+		return err
+	}
+	changes := make([][]Shares, len(dishes)) // by each proportion
 	for i, u := range f.Job.Measured {
-		var sides [2][]Shares
-		for side, sign := range []float64{1, -1} {
-			stone, err := f.moved(map[string]float64{u.Name: sign * u.Sigma})
-			if err != nil {
-				return fmt.Errorf("%w (%s moved by %g: %w)", ErrNoStones, u.Name, sign*u.Sigma, err)
-			}
-			if sides[side], err = f.shares(ctx, stone, dishes); err != nil {
-				return err
-			}
+		stone, err := f.moved(map[string]float64{u.Name: u.Sigma})
+		if err != nil {
+			stone, err = f.moved(map[string]float64{u.Name: -u.Sigma})
+		}
+		if err != nil {
+			return fmt.Errorf("%w (%s moved by %g: %w)", ErrNoStones, u.Name, u.Sigma, err)
+		}
+		moved, err := f.shares(ctx, stone, dishes)
+		if err != nil {
+			return err
 		}
 		for k := range dishes {
-			squares[k] = append(squares[k], combined(func(of func(*Shares) float64) float64 {
-				return (of(&sides[0][k]) - of(&sides[1][k])) / 2
-			}))
+			changes[k] = append(changes[k], combined(func(of func(*Shares) float64) float64 { return of(&moved[k]) - of(&base[k]) }))
 		}
 		tell(1 - dishShare + dishShare*float64(i+1)/float64(len(f.Job.Measured)))
 	}
 	for k := range dishes {
 		joint := combined(func(of func(*Shares) float64) float64 {
 			sum := 0.0
-			for i := range squares[k] {
-				sum += math.Pow(of(&squares[k][i]), 2)
+			for i := range changes[k] {
+				sum += math.Pow(of(&changes[k][i]), 2)
 			}
 			return math.Sqrt(sum)
 		})
