@@ -207,7 +207,11 @@ func bounds[T any](tag *kong.Tag, parse func(string) (T, error)) (least, most T,
 func decodeWord(k *kong.DecodeContext, target reflect.Value) error {
 	token := k.Scan.Pop()
 	text := token.String()
-	if token.IsEOL() || text == "" || token.InferredType().IsAny(kong.FlagToken, kong.ShortFlagToken) {
+	flag := token.InferredType().IsAny(kong.FlagToken, kong.ShortFlagToken)
+	if flag && len(text) > 1 && strings.ContainsRune(".0123456789", rune(text[1])) {
+		flag = false // a number below 0 begins the value, as in -20..20/10
+	}
+	if token.IsEOL() || text == "" || flag {
 		return errors.New("a value must follow")
 	}
 	target.SetString(text)

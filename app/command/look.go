@@ -48,7 +48,8 @@ type lookResult struct {
 	HeadDeg      float64      `json:"head_deg"`
 	WavelengthNM *float64     `json:"wavelength_nm"` // null for the spectrum
 	Polarisation string       `json:"polarisation"`
-	Kernel       string       `json:"kernel"` // form of arithmetic of clean facets in one medium
+	Arranged     []string     `json:"arranged,omitempty"` // what else differs from a bare stone in even light, in words
+	Kernel       string       `json:"kernel"`             // form of arithmetic of clean facets in one medium
 	Media        []lookMedium `json:"media"`
 }
 
@@ -282,6 +283,10 @@ func (l *lookCommand) report(s *subject, scene trace.Scene, result *trace.Result
 		HeadDeg:      l.Head,
 		Polarisation: "full",
 	}
+	report.Arranged = append(report.Arranged, l.arranged()...)
+	if l.Below > 0 {
+		report.Arranged = append(report.Arranged, fmt.Sprintf("luminance %g below", l.Below))
+	}
 	if l.Unpolarised {
 		report.Polarisation = "averaged"
 	}
@@ -342,7 +347,7 @@ func (r *lookResult) viewWords() string {
 	if r.Polarisation == "averaged" {
 		polarisation = "polarisation averaged at every facet"
 	}
-	return strings.Join([]string{view, light, head, waves, polarisation}, ", ")
+	return strings.Join(append([]string{view, light, head, waves, polarisation}, r.Arranged...), ", ")
 }
 
 // stoneWords says what the stone is.

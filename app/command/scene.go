@@ -112,6 +112,31 @@ func (f *sceneFlags) scene(s *subject) (trace.Scene, error) {
 	return scene, nil
 }
 
+// arranged says in words what the flags put around the stone, beyond the surroundings
+// that have a column of their own.
+func (f *sceneFlags) arranged() (words []string) {
+	add := func(asked bool, format string, args ...any) {
+		if asked {
+			words = append(words, fmt.Sprintf(format, args...))
+		}
+	}
+	add(f.Wet != "", "only %s wet and all else in air", f.Wet)
+	for _, film := range f.Film {
+		tiers, rest, _ := strings.Cut(film, "=")
+		add(true, "a film %s nm on %s", rest, tiers)
+	}
+	add(f.Ground != "", "ground that sends back %s", f.Ground)
+	wall, open, partly := strings.Cut(f.Setting, ",")
+	add(f.Setting != "", "a wall behind the pavilion that sends back %s", wall)
+	add(partly, "open over %s of its depth", open)
+	add(f.Axis != "", "optic axis %s °", f.Axis)
+	add(f.Illuminant != "", "spectrum %s", f.Illuminant)
+	add(f.Zenith != "", "zenith of the light %s °", f.Zenith)
+	add(f.Distance > 0, "eye %g mm away", f.Distance)
+	add(f.Aside != 0, "and %g mm aside", f.Aside)
+	return words
+}
+
 // light returns the light to trace with: nil for the even light without a spectrum of
 // its own, which the fast tracer knows.
 func (f *sceneFlags) light(colour bool) (*trace.Light, error) {

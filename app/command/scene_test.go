@@ -10,6 +10,22 @@ import (
 	"pavilight/trace"
 )
 
+// TestLookSaysWhatIsArranged: two ledgers that differ by a flag must not look alike.
+func TestLookSaysWhatIsArranged(t *testing.T) {
+	got := runCommand(quick("look", "--in", "oil", "--wet", "P1,P2", "--film", "C1=1.48:20000", "--ground", "0.8", "--setting", "0.5,0.2",
+		"--illuminant", "A", "--distance", "300", "--aside", "-30", "--below", "0.4")...)
+	for _, want := range []string{"only P1,P2 wet and all else in air", "a film 1.48:20000 nm on C1", "ground that sends back 0.8",
+		"a wall behind the pavilion that sends back 0.5", "open over 0.2 of its depth", "spectrum A", "eye 300 mm away", "and -30 mm aside",
+		"luminance 0.4 below"} {
+		if !strings.Contains(got.stdout, want) {
+			t.Errorf("%q is missing: %s%s", want, got.stdout, got.stderr)
+		}
+	}
+	if bare := decoded[lookResult](t, quick("look", "--in", "air")...); len(bare.Arranged) != 0 {
+		t.Errorf("a bare stone has %v", bare.Arranged)
+	}
+}
+
 // TestScene tries every flag that puts something around the stone: each must change
 // the ledger in the way that it can only change it.
 func TestScene(t *testing.T) {

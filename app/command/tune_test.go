@@ -146,6 +146,18 @@ func TestTunePrints(t *testing.T) {
 	}
 }
 
+// A value may begin with a number below 0; a flag in its place is still a forgotten value.
+func TestTuneTakesValuesBelowZero(t *testing.T) {
+	plan := file(t, "tent.toml", small)
+	quick := []string{"tune", plan, "--vary", "P=42..42.5", "--step", "0.5", "--tilts"}
+	if got := runCommand(append(quick, "-10..10/10")...); got.status != Done || !strings.Contains(got.stdout, "rocked by -10°, 0°, 10°") {
+		t.Errorf("exit status %d: %s%s", got.status, got.stdout, got.stderr)
+	}
+	if got := runCommand(append(quick, "--worst")...); got.status != CommandFault || !strings.Contains(got.stderr, "a value must follow") {
+		t.Errorf("exit status %d: %s", got.status, got.stderr)
+	}
+}
+
 func TestTuneField(t *testing.T) {
 	plan := file(t, "tent.toml", small)
 	out := t.TempDir()

@@ -49,21 +49,26 @@ func (s *Sheet) Draw() (*image.RGBA, error) {
 	for _, lines := range s.Ledger {
 		tallest = max(tallest, len(lines))
 	}
-	head := margin + titleSize + lineStep*len(s.Lines) + 12
 	rowStep := lineStep + edge + gap
 	width := 2*margin + columns*(edge+gap) + scaleRoom
-	height := head + lineStep + len(s.Rows)*rowStep + lineStep*(tallest+2) + margin
-	dst := blank(width, height)
+	text := width - 2*margin
 	l, err := newLetters()
 	if err != nil {
 		return nil, err
 	}
+	var above []string
+	for _, line := range s.Lines {
+		above = append(above, wrap(l.body, line, text)...)
+	}
+	legend := wrap(l.body, s.Legend, text)
+	head := margin + titleSize + lineStep*len(above) + 12
+	height := head + lineStep + len(s.Rows)*rowStep + lineStep*(tallest+1+len(legend)) + margin
+	dst := blank(width, height)
 	l.dst = dst
 
-	text := width - 2*margin
 	l.write(l.title, margin, margin+titleSize-3, left, ink, cut(l.title, s.Title, text))
-	for i, line := range s.Lines {
-		l.write(l.body, margin, margin+titleSize+lineStep*(i+1)-2, left, ink, cut(l.body, line, text))
+	for i, line := range above {
+		l.write(l.body, margin, margin+titleSize+lineStep*(i+1)-2, left, ink, line)
 	}
 	for c := range columns {
 		x := margin + c*(edge+gap)
@@ -83,6 +88,8 @@ func (s *Sheet) Draw() (*image.RGBA, error) {
 			l.write(l.body, margin+c*(edge+gap), y+bodySize+lineStep*i, left, ink, cut(l.body, line, edge))
 		}
 	}
-	l.write(l.body, margin, y+bodySize+lineStep*(tallest+1)-8, left, pale, cut(l.body, s.Legend, text))
+	for i, line := range legend {
+		l.write(l.body, margin, y+bodySize+lineStep*(tallest+1+i)-8, left, pale, line)
+	}
 	return dst, nil
 }
