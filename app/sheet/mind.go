@@ -106,7 +106,7 @@ func (l *press) mind() {
 	l.paragraph(l.body(), black(), "Shape and light are computed from the plan. "+
 		"The maps are a model: they grade no stone and replace no laboratory. Not modelled: inclusions, haze, colour zones, fluorescence, fracture filling.")
 	if !s.LeaveOut.Any() {
-		l.paragraph(l.body(), black(), "The plan file travels inside this PDF as an attachment and opens in Pavilight again.")
+		l.paragraph(l.body(), black(), "The plan file travels inside this PDF as an attachment; saved from there it opens in Pavilight again.")
 	}
 	if l.lacking {
 		l.paragraph(l.body(), black(), fmt.Sprintf("%c stands for a letter that this sheet's typeface does not hold: "+
