@@ -14,6 +14,7 @@ import (
 // beside it, and a menu of the others.
 type chooser struct {
 	widget.BaseWidget
+	tip tip
 
 	text    string
 	size    fyne.ThemeSizeName
@@ -43,6 +44,7 @@ func (c *chooser) setText(text string) {
 }
 
 func (c *chooser) open() {
+	c.tip.leave()
 	if c.opens != nil {
 		c.opens()
 		return
@@ -76,13 +78,13 @@ func (c *chooser) FocusGained() { c.focused = true; c.Refresh() }
 func (c *chooser) FocusLost() { c.focused = false; c.Refresh() }
 
 // MouseIn marks it.
-func (c *chooser) MouseIn(*desktop.MouseEvent) { c.hovered = true; c.Refresh() }
+func (c *chooser) MouseIn(*desktop.MouseEvent) { c.hovered = true; c.Refresh(); c.tip.enter(c) }
 
 // MouseMoved is not used.
 func (c *chooser) MouseMoved(*desktop.MouseEvent) {}
 
 // MouseOut unmarks it.
-func (c *chooser) MouseOut() { c.hovered = false; c.Refresh() }
+func (c *chooser) MouseOut() { c.hovered = false; c.Refresh(); c.tip.leave() }
 
 // CreateRenderer builds the word and the mark.
 func (c *chooser) CreateRenderer() fyne.WidgetRenderer {

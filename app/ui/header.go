@@ -39,6 +39,7 @@ type roomButton struct {
 	open             bool
 	tapped           func()
 	hovered, focused bool
+	tip              tip
 }
 
 var (
@@ -61,7 +62,7 @@ func (b *roomButton) setOpen(open bool) {
 }
 
 // Tapped enters the room.
-func (b *roomButton) Tapped(*fyne.PointEvent) { b.tapped() }
+func (b *roomButton) Tapped(*fyne.PointEvent) { b.tip.leave(); b.tapped() }
 
 // TypedKey enters the room.
 func (b *roomButton) TypedKey(e *fyne.KeyEvent) {
@@ -80,13 +81,13 @@ func (b *roomButton) FocusGained() { b.focused = true; b.Refresh() }
 func (b *roomButton) FocusLost() { b.focused = false; b.Refresh() }
 
 // MouseIn marks the button.
-func (b *roomButton) MouseIn(*desktop.MouseEvent) { b.hovered = true; b.Refresh() }
+func (b *roomButton) MouseIn(*desktop.MouseEvent) { b.hovered = true; b.Refresh(); b.tip.enter(b) }
 
 // MouseMoved is not used.
 func (b *roomButton) MouseMoved(*desktop.MouseEvent) {}
 
 // MouseOut unmarks the button.
-func (b *roomButton) MouseOut() { b.hovered = false; b.Refresh() }
+func (b *roomButton) MouseOut() { b.hovered = false; b.Refresh(); b.tip.leave() }
 
 // CreateRenderer builds the word, its ground and its line.
 func (b *roomButton) CreateRenderer() fyne.WidgetRenderer {

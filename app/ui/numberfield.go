@@ -27,10 +27,12 @@ type numberField struct {
 	value   float64 // the last that was shown or committed
 	focused bool
 	entered bool // the focus came with the press under way
+	tip     tip
 }
 
 var (
 	_ fyne.Scrollable   = (*numberField)(nil)
+	_ desktop.Hoverable = (*numberField)(nil)
 	_ fyne.Focusable    = (*numberField)(nil)
 	_ desktop.Keyable   = (*numberField)(nil)
 	_ fyne.Shortcutable = (*numberField)(nil)
@@ -43,6 +45,15 @@ func newNumberField(read func(string) (float64, error), write func(float64) stri
 	f.OnSubmitted = func(string) { f.settle() }
 	return f
 }
+
+// MouseIn waits for the tip.
+func (f *numberField) MouseIn(*desktop.MouseEvent) { f.tip.enter(f) }
+
+// MouseMoved is not used.
+func (f *numberField) MouseMoved(*desktop.MouseEvent) {}
+
+// MouseOut takes the tip away.
+func (f *numberField) MouseOut() { f.tip.leave() }
 
 // show puts a number into the field unless the user is typing another one.
 func (f *numberField) show(v float64) {
@@ -169,6 +180,7 @@ func (f *numberField) markAll() { f.Entry.TypedShortcut(&fyne.ShortcutSelectAll{
 
 // FocusGained marks all of the text, so that typing replaces it.
 func (f *numberField) FocusGained() {
+	f.tip.leave()
 	f.focused = true
 	f.Entry.FocusGained()
 	f.markAll()

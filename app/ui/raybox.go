@@ -13,7 +13,6 @@ import (
 	"fyne.io/fyne/v2/layout"
 	"fyne.io/fyne/v2/storage"
 	"fyne.io/fyne/v2/theme"
-	"fyne.io/fyne/v2/widget"
 
 	"pavilight/app/disk"
 	"pavilight/app/drawing"
@@ -32,6 +31,7 @@ type rayBeside struct {
 func (w *window) buildRayBox() *fyne.Container {
 	b := &w.beside
 	b.chooser = newChooser(theme.SizeNameText, w.besideItems)
+	b.chooser.tip = tip{w.tips, tipBeside}
 	b.title = newWrapped(theme.ColorNameForeground, theme.SizeNameText)
 	b.list = newRayList(func(int) {}, w.strayKey)
 	tall := func(t *wrapped) fyne.CanvasObject {
@@ -39,14 +39,14 @@ func (w *window) buildRayBox() *fyne.Container {
 	}
 	b.box = container.NewVBox(tall(b.title), b.list)
 	b.box.Hide()
-	copies := widget.NewButton("Copy", func() {
+	copies := w.tips.button("Copy", nil, tipCopy, func() {
 		if r := w.bench.Look.Ray; r != nil {
 			w.app.Clipboard().SetContent(r.Text())
 			w.report("The ray is on the clipboard, as a table.")
 		}
 	})
-	saves := widget.NewButton("Save…", w.saveRay)
-	closes := widget.NewButton("Let go", w.bench.Look.Unfollow)
+	saves := w.tips.button("Save…", nil, tipDraw, w.saveRay)
+	closes := w.tips.button("Let go", nil, tipLetGo, w.bench.Look.Unfollow)
 	head := container.NewVBox(
 		container.NewHBox(newWord(colourDim, theme.SizeNameText, "Beside it"), b.chooser), tall(w.rayTitle))
 	return container.New(layout.NewCustomPaddedLayout(8, 8, 14, 10), container.NewBorder(head,

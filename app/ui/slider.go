@@ -21,6 +21,7 @@ type tick struct {
 // that the hand is moving toward. While it is dragged it previews; when it is let
 // go, or stepped by a key, it settles.
 type tickSlider struct {
+	tip tip
 	widget.DisableableWidget
 
 	low, high, value float64
@@ -111,6 +112,7 @@ func (s *tickSlider) settle() {
 
 // MouseDown takes the focus and jumps to the pointer.
 func (s *tickSlider) MouseDown(e *desktop.MouseEvent) {
+	s.tip.leave()
 	if e.Button != desktop.MouseButtonPrimary || s.Disabled() {
 		return
 	}
@@ -132,6 +134,7 @@ func (s *tickSlider) MouseUp(*desktop.MouseEvent) {
 
 // Dragged follows the pointer.
 func (s *tickSlider) Dragged(e *fyne.DragEvent) {
+	s.tip.leave()
 	s.dragging = true
 	s.set(s.number(e.Position.X))
 }
@@ -194,13 +197,13 @@ func (s *tickSlider) FocusLost() {
 }
 
 // MouseIn marks the thumb.
-func (s *tickSlider) MouseIn(*desktop.MouseEvent) { s.hovered = true; s.Refresh() }
+func (s *tickSlider) MouseIn(*desktop.MouseEvent) { s.hovered = true; s.Refresh(); s.tip.enter(s) }
 
 // MouseMoved is not used.
 func (s *tickSlider) MouseMoved(*desktop.MouseEvent) {}
 
 // MouseOut unmarks the thumb.
-func (s *tickSlider) MouseOut() { s.hovered = false; s.Refresh() }
+func (s *tickSlider) MouseOut() { s.hovered = false; s.Refresh(); s.tip.leave() }
 
 // Cursor tells that the thumb moves sideways.
 func (s *tickSlider) Cursor() desktop.Cursor { return desktop.HResizeCursor }

@@ -19,6 +19,7 @@ import (
 // tierList is the plan as a list: its tiers by side, from the table down, each with
 // a number field and a slider for its angle.
 type tierList struct {
+	tips  *tipLayer
 	bench *model.Bench
 	say   func(error)             // tells why an entry was refused; nil when all is well
 	items func() []*fyne.MenuItem // about the tier that is picked
@@ -30,8 +31,8 @@ type tierList struct {
 	rows   []*tierRow
 }
 
-func newTierList(bench *model.Bench, say func(error), stray func(*fyne.KeyEvent)) *tierList {
-	l := &tierList{bench: bench, say: say, stray: stray, box: container.New(layout.NewCustomPaddedVBoxLayout(2))}
+func newTierList(bench *model.Bench, tips *tipLayer, say func(error), stray func(*fyne.KeyEvent)) *tierList {
+	l := &tierList{bench: bench, tips: tips, say: say, stray: stray, box: container.New(layout.NewCustomPaddedVBoxLayout(2))}
 	l.scroll = container.NewVScroll(container.New(layout.NewCustomPaddedLayout(0, 8, 0, 12), l.box))
 	l.refresh()
 	return l
@@ -137,10 +138,12 @@ func newTierRow(l *tierList, row model.TierRow) *tierRow {
 		r.field.commit = func(v float64) error {
 			return l.bench.SetAngle(r.number, facets.Angle(v)*facets.Degree, false)
 		}
+		r.field.tip = tip{l.tips, tipAngle}
 		r.field.trouble, r.field.gained = l.say, pick
 	}
 	if row.Slides {
 		r.slider = newTickSlider(0.05)
+		r.slider.tip = tip{l.tips, tipSlider}
 		r.slider.preview = func(v float64) {
 			l.say(l.bench.SetAngle(r.number, facets.Angle(v)*facets.Degree, true))
 		}

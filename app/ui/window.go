@@ -36,7 +36,7 @@ type window struct {
 	doors    [rooms]*roomButton
 	state    *line
 	progress *progressLine
-	stop     *widget.Button
+	stop     *tipButton
 
 	// rooms
 	room   room
@@ -68,6 +68,7 @@ type window struct {
 	cutting cutBench
 	cutBox  fyne.CanvasObject
 
+	tips    *tipLayer
 	message *line
 	light   *line
 
@@ -105,6 +106,7 @@ func newWindow(a fyne.App, doc *model.Document, do func(func()), tell func(strin
 }
 
 func (w *window) build() {
+	w.tips = newTipLayer(w.do)
 	w.title = newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, "").bold()
 	w.material = newChooser(theme.SizeNameText, nil)
 	w.material.opens = w.chooseMaterial
@@ -117,9 +119,9 @@ func (w *window) build() {
 	}
 	w.state = newLine(colourDim, theme.SizeNameText).aligned(fyne.TextAlignTrailing)
 	w.progress = newProgressLine()
-	w.stop = widget.NewButton("Stop", w.stopOrResume)
+	w.stop = w.tips.button("Stop", nil, tipStop, w.stopOrResume)
 
-	w.list = newTierList(w.bench, w.say, w.strayKey)
+	w.list = newTierList(w.bench, w.tips, w.say, w.strayKey)
 	w.list.items = w.tierItems
 	w.troubles = widget.NewLabel("")
 	w.troubles.Wrapping = fyne.TextWrapWord
@@ -168,8 +170,29 @@ func (w *window) build() {
 	w.from = newFromPlot()
 	w.rayTitle = newWrapped(theme.ColorNameForeground, theme.SizeNameText)
 	w.ray = newRayList(w.bench.Look.PickBounce, w.strayKey)
+	w.giveTips()
 	w.message = newLine(colourDim, theme.SizeNameCaptionText)
 	w.light = newLine(colourDim, theme.SizeNameCaptionText).aligned(fyne.TextAlignTrailing)
+}
+
+// giveTips gives the choosers and fields that are terse their tips.
+func (w *window) giveTips() {
+	give := func(t *tip, words string) { *t = tip{w.tips, words} }
+	give(&w.material.tip, tipMaterial)
+	give(&w.width.tip, tipWidth)
+	give(&w.tilt.tip, tipTilt)
+	give(&w.turn.tip, tipTurn)
+	give(&w.head.tip, tipHead)
+	give(&w.shines.tip, tipLight)
+	for r := range rooms {
+		give(&w.doors[r].tip, tipRoom(r))
+	}
+	for j := range columns {
+		give(&w.grid.media[j].tip, tipMedium)
+	}
+	for i := range w.grid.row {
+		give(&w.grid.row[i].tip, tipRow)
+	}
 }
 
 // readTilt reads an angle that may be negative: the stone rocked the other way.
@@ -207,7 +230,8 @@ func (w *window) content() fyne.CanvasObject {
 	w.tuneBox.Hide()
 	w.cutBox.Hide()
 	status := container.New(layout.NewCustomPaddedLayout(2, 4, 12, 12), container.NewGridWithColumns(2, w.message, w.light))
-	return container.NewBorder(w.headerBar(), status, nil, nil, container.NewStack(w.body, w.tuneBox, w.cutBox, w.coming))
+	return container.NewStack(container.NewBorder(w.headerBar(), status, nil, nil,
+		container.NewStack(w.body, w.tuneBox, w.cutBox, w.coming)), w.tips.box)
 }
 
 func (w *window) headerBar() fyne.CanvasObject {
@@ -227,7 +251,7 @@ func (w *window) headerBar() fyne.CanvasObject {
 
 // planPane is the left one: the tiers, and what is wrong with the plan if anything is.
 func (w *window) planPane() fyne.CanvasObject {
-	add := widget.NewButtonWithIcon("Tier", theme.ContentAddIcon(), w.addTier)
+	add := w.tips.button("Tier", theme.ContentAddIcon(), tipTier, w.addTier)
 	add.Importance = widget.LowImportance
 	foot := container.NewVBox(container.New(layout.NewCustomPaddedLayout(0, 4, 8, 8), container.NewHBox(add)), w.fault)
 	return pane(container.NewBorder(nil, foot, nil, nil, w.list.scroll))
@@ -264,13 +288,13 @@ func (w *window) lookPane() fyne.CanvasObject {
 
 // stonePane is the right one: the solid and its measures.
 func (w *window) stonePane() fyne.CanvasObject {
-	pose := func(name string, p func() solid.Pose) fyne.CanvasObject {
-		b := widget.NewButton(name, func() { w.solid.turnTo(p()) })
+	pose := func(name, words string, p func() solid.Pose) fyne.CanvasObject {
+		b := w.tips.button(name, nil, words, func() { w.solid.turnTo(p()) })
 		b.Importance = widget.LowImportance
 		return b
 	}
-	poses := container.NewGridWithColumns(4, pose("Table", solid.FaceUp), pose("Side", solid.Profile),
-		pose("Culet", solid.FaceDown), pose("Askew", restingPose))
+	poses := container.NewGridWithColumns(4, pose("Table", tipFaceUp, solid.FaceUp), pose("Side", tipSide, solid.Profile),
+		pose("Culet", tipFaceDown, solid.FaceDown), pose("Askew", tipAskew, restingPose))
 	top := container.New(&squareLayout{}, w.solid, poses)
 	whence := newWord(theme.ColorNameForeground, theme.SizeNameText, "Where it comes from").bold()
 	under := newWord(colourDim, theme.SizeNameCaptionText, "share of returned light by angle from the eye")
@@ -523,7 +547,7 @@ func (w *window) refreshProgress() {
 	if w.stop.Text != text {
 		w.stop.SetText(text)
 	}
-	enable(w.stop, p.active || p.stopped)
+	enable(&w.stop.Button, p.active || p.stopped)
 }
 
 // stopOrResume ends what runs in the open room, or goes on with it.

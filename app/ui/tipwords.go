@@ -1,0 +1,42 @@
+package ui
+
+// The words of all tips, in one place. A tip says what a control does, and which keys
+// do the same; it does not repeat its label.
+const (
+	tipMaterial = "What the stone is made of"
+	tipWidth    = "Width of the girdle's outline: all other sizes follow"
+	tipStop     = "End the tracing under way, or go on with it (Ctrl+.)"
+	tipTier     = "Add a tier of facets to the plan"
+
+	tipTilt  = "How far the stone is rocked; negative the other way. Arrow keys step it"
+	tipTurn  = "Index that the stone is rocked toward, as on the gear"
+	tipHead  = "Half-angle of the cone that the viewer's head takes out of the light"
+	tipLight = "The light under which true colour is seen"
+	tipRange = "How far the strip rocks the stone to either side"
+
+	tipMedium = "What surrounds the stone in this column, without or with a dish"
+	tipRow    = "What this row of maps shows"
+
+	tipFaceUp   = "Look down on the table, index 0 up"
+	tipSide     = "Look at the girdle, table up"
+	tipFaceDown = "Look up at the culet"
+	tipAskew    = "Look from above the girdle"
+
+	tipAngle  = "Angle from the girdle's plane, 0° at the table. Also 41,8 or 41 deg 48 min"
+	tipSlider = "Drag to see all maps follow. Ticks are critical angles: below its tick a pavilion facet begins to leak"
+
+	tipBeside = "Follow the same ray in another surrounding"
+	tipCopy   = "Put the ray on the clipboard, as a table"
+	tipDraw   = "Draw the ray into a file, or tell it as text"
+	tipLetGo  = "Follow no ray any more (Esc)"
+)
+
+// tipRoom says what a room is for.
+func tipRoom(r room) string {
+	return [...]string{
+		"See where the light goes (Ctrl+1)",
+		"Search for better angles (Ctrl+2)",
+		"The sheet to cut by (Ctrl+3)",
+		"The report that explains the stone (Ctrl+4)",
+	}[r]
+}
