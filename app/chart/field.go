@@ -25,6 +25,15 @@ type FieldChart struct {
 	Lines  []string // under the title: stone, surroundings, goal
 	Goal   string   // what the score is, beside the scale
 	Points []Point  // further places, numbered and named under the chart
+	Edge   float64  // of the square, mm; 0 means 120. Smaller ones leave the words larger on a small screen
+}
+
+// edgeOr returns the edge of a chart's square, mm.
+func edgeOr(edge float64) float64 {
+	if edge > 0 {
+		return edge
+	}
+	return chartEdge
 }
 
 // Measures of a chart, mm.
@@ -53,17 +62,9 @@ const contourLines = 8
 // within 1 % of the best outlined, the ridge, the plan as it stands and the best. Cells
 // without a stone that fits stay grey, cells not tried yet show a coarser one.
 func Field(f *tune.Field, o FieldChart) *drawing.Page {
-	width := chartMargin + chartLeft + chartEdge + scaleGap + scaleWidth + scaleRoom
-	var lines []string
-	for _, l := range o.Lines {
-		lines = append(lines, bodyType.Wrap(l, width-2*chartMargin)...)
-	}
-	var legend []string
-	for _, l := range fieldLegend(f, o) {
-		legend = append(legend, bodyType.Wrap(l, width-2*chartMargin)...)
-	}
-	top := chartMargin + titleType.Leading() + float64(len(lines))*bodyType.Leading() + 9
-	p := &drawing.Page{Width: width, Height: top + chartEdge + 16 + float64(len(legend))*bodyType.Leading() + chartMargin}
+	lines, legend, b, p := fieldLayout(f, o)
+	top := b.at.Y
+	width := p.Width
 	y := chartMargin + titleType.Height()
 	p.Write(titleType, black, drawing.Left, drawing.Point{X: chartMargin, Y: y}, titleType.Cut(o.Title, width-2*chartMargin))
 	y += bodyType.Leading() + 1
@@ -73,10 +74,9 @@ func Field(f *tune.Field, o FieldChart) *drawing.Page {
 	}
 
 	// Cells are drawn about their grid points, so the picture reaches half a cell beyond.
-	b := box{at: drawing.Point{X: chartMargin + chartLeft, Y: top}, edge: chartEdge, x: axisOf(f.X, f.Columns), y: axisOf(f.Y, f.Rows)}
 	low, high := scoreRange(f)
 	colours := picture.Cividis()
-	p.Place(cells(f, colours, low, high), b.at, chartEdge, chartEdge)
+	p.Place(cells(f, colours, low, high), b.at, b.edge, b.edge)
 	b.axes(p, f.X, f.Y)
 
 	levels := Levels(low, high, contourLines)
@@ -105,12 +105,37 @@ func Field(f *tune.Field, o FieldChart) *drawing.Page {
 	b.points(p, o.Points)
 	b.scale(p, colours, low, high, o.Goal)
 
-	y = top + chartEdge + 14
+	y = top + b.edge + 14
 	for _, l := range legend {
 		p.Write(bodyType, black, drawing.Left, drawing.Point{X: chartMargin, Y: y}, l)
 		y += bodyType.Leading()
 	}
 	return p
+}
+
+// fieldLayout breaks the words of a field's chart into lines, and places the field on an
+// empty page.
+func fieldLayout(f *tune.Field, o FieldChart) (lines, legend []string, b box, p *drawing.Page) {
+	edge := edgeOr(o.Edge)
+	width := chartMargin + chartLeft + edge + scaleGap + scaleWidth + scaleRoom
+	for _, l := range o.Lines {
+		lines = append(lines, bodyType.Wrap(l, width-2*chartMargin)...)
+	}
+	for _, l := range fieldLegend(f, o) {
+		legend = append(legend, bodyType.Wrap(l, width-2*chartMargin)...)
+	}
+	top := chartMargin + titleType.Leading() + float64(len(lines))*bodyType.Leading() + 9
+	b = box{at: drawing.Point{X: chartMargin + chartLeft, Y: top}, edge: edge, x: axisOf(f.X, f.Columns), y: axisOf(f.Y, f.Rows)}
+	return lines, legend, b, &drawing.Page{Width: width, Height: top + edge + 16 + float64(len(legend))*bodyType.Leading() + chartMargin}
+}
+
+// FieldCell returns the cell of a field at a place of its chart, in shares of the page from
+// its upper left corner; ok is false beside the field.
+func FieldCell(f *tune.Field, o FieldChart, x, y float64) (column, row int, ok bool) {
+	_, _, b, p := fieldLayout(f, o)
+	right, up := (x*p.Width-b.at.X)/b.edge, (b.at.Y+b.edge-y*p.Height)/b.edge
+	column, row = int(math.Floor(right*float64(f.Columns))), int(math.Floor(up*float64(f.Rows)))
+	return column, row, column >= 0 && column < f.Columns && row >= 0 && row < f.Rows
 }
 
 // points marks places by a dot with its number; places that lie together share one label.

@@ -113,13 +113,12 @@ func (t *tuning) stone(trial tune.Trial) tuneStone {
 	return s
 }
 
-// measureName is what people call a measure.
+// measureName is what people call a measure, with its unit.
 func measureName(m tune.Measure) string {
-	return map[tune.Measure]string{
-		tune.LightReturn: "light return", tune.Leakage: "leakage", tune.HeadShade: "darkened by the head", tune.LeakyArea: "leaky area",
-		tune.WindowedArea: "windowed area", tune.Weight: "weight, ct", tune.Luminance: "luminance", tune.DarkArea: "dark area",
-		tune.Contrast: "contrast", tune.Fire: "fire", tune.Sparkle: "sparkle",
-	}[m]
+	if m == tune.Weight {
+		return m.Name() + ", ct"
+	}
+	return m.Name()
 }
 
 // goalWords says in words what the stone is to be good at.
@@ -151,7 +150,7 @@ func (t *tuning) caseWords() string {
 	}
 	byEye := false
 	for _, a := range t.problem.Goal.Aims {
-		byEye = byEye || a.Measure >= tune.Luminance
+		byEye = byEye || a.Measure.ByEye()
 	}
 	for _, c := range t.problem.Goal.Cases {
 		name := c.Surrounding.Medium.Key

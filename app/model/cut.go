@@ -59,10 +59,9 @@ type Cut struct {
 	number   int           // of the run that counts
 	cancel   context.CancelFunc
 
-	width    int // of the picture, pixels
-	painting bool
-	painted  cutView
-	open     sync.WaitGroup // goroutines of all kinds
+	width   int // of the picture, pixels
+	painter painter
+	open    sync.WaitGroup // goroutines of all kinds
 }
 
 // cutSubject is what the sheet is of.
@@ -79,16 +78,12 @@ func (s cutSubject) same(o cutSubject) bool {
 	return s.plan == o.plan && s.around == o.around && s.head == o.head // a plan names its material
 }
 
-// cutView tells one picture of a page from another.
-type cutView struct {
-	page  *drawing.Page
-	width int
-}
-
 // NewCut returns the state before a sheet was asked for. do hands work to the window's
 // goroutine, in order, without waiting for it; onChange is called there.
 func NewCut(machines sheet.Machines, do func(func()), onChange func()) *Cut {
-	return &Cut{Wish: CutWish{Paper: sheet.Papers()[0].Name, Maps: true}, Machines: machines, do: do, onChange: onChange}
+	c := &Cut{Wish: CutWish{Paper: sheet.Papers()[0].Name, Maps: true}, Machines: machines, do: do, onChange: onChange}
+	c.painter = painter{do: do, open: &c.open}
+	return c
 }
 
 // SetSubject lays out the sheet of a plan, unless that is what is in view.
@@ -156,6 +151,7 @@ func (c *Cut) make() {
 			c.Stopped = stopped
 			if !stopped && err != nil {
 				c.Trouble, c.Sheet, c.pages, c.Picture = err, nil, nil, nil
+				c.painter.forget()
 			}
 		})
 	})
@@ -277,28 +273,16 @@ func (c *Cut) SetWidth(pixels int) {
 	c.paint()
 }
 
-// paint has the page in view painted on another goroutine, one picture at a time: while
-// one is painted, only the newest wish waits.
+// paint has the page in view painted.
 func (c *Cut) paint() {
-	if c.painting || len(c.pages) == 0 || c.width == 0 {
+	if len(c.pages) == 0 {
 		return
 	}
-	want := cutView{c.pages[c.Page], c.width}
-	if want == c.painted {
-		return
-	}
-	c.painting = true
-	c.open.Go(func() {
-		img := want.page.Raster(float64(want.width) / want.page.Width)
-		c.do(func() {
-			c.painting = false
-			if len(c.pages) > 0 && c.pages[c.Page] == want.page {
-				c.Picture, c.painted = img, want
-				c.onChange()
-			}
-			c.paint()
-		})
-	})
+	page := c.pages[c.Page]
+	c.painter.paint(painting{page, c.width, func() *drawing.Page { return page }, func(img *image.RGBA, _ *drawing.Page) {
+		c.Picture = img
+		c.onChange()
+	}})
 }
 
 // Ready reports whether there is a sheet that can be written.

@@ -5,14 +5,12 @@ import (
 	"errors"
 	"fmt"
 	"image"
-	"math"
 	"runtime"
-	"strconv"
 	"strings"
+	"sync"
 	"sync/atomic"
 	"time"
 
-	"pavilight/app/chart"
 	"pavilight/app/picture"
 	"pavilight/facets"
 	"pavilight/gems"
@@ -42,6 +40,11 @@ func (t TuneTask) String() string {
 	return [...]string{"Find better angles", "Show the goal over two", "What errors cost", "Trade two goals off", "Another material"}[t]
 }
 
+// doing says what a run is at before it tells more.
+func (t TuneTask) doing() string {
+	return [...]string{"searching", "seeing the field", "cutting with errors", "searching", "moving"}[t]
+}
+
 // TuneChoice is one thing that may vary, and whether it shall.
 type TuneChoice struct {
 	tune.Variable
@@ -57,11 +60,14 @@ type Tune struct {
 	Choices  []TuneChoice
 	Aims     []tune.Aim
 	Limits   tune.Limits
+	Seen     []TuneAround // surroundings to choose from: the columns of the maps
+	Light    *trace.Light // for what an eye sees; nil for the even light
 	Tilts    []facets.Angle
 	Worst    bool
 	Step     float64 // degrees
 	Machine  tune.Machine
 	Draws    int            // of TellErrors
+	Cells    int            // of ShowField, along each edge; 0 for the usual number
 	To       *gems.Material // of MoveMaterial
 	KeepFile string         // remembers what was seen; empty for none
 
@@ -79,54 +85,107 @@ type Tune struct {
 	Tolerance     *tune.Tolerance
 	Front         *tune.Front
 	Moved         *tune.Moved
+	Pick          *tune.Trial     // of the field or the front, by hand; nil for the best
+	Chart         *image.RGBA     // of the field, the front or what errors cost; nil before there is one
 	variablesUsed []tune.Variable // by the answer shown
+	aimsUsed      []tune.Aim      // likewise
+	limitsUsed    tune.Limits     // likewise
+	planUsed      *facets.Plan    // likewise
 
 	do       func(func())
 	onChange func()
 	plan     *facets.Plan
 	material *gems.Material
-	around   []Around
 	head     facets.Angle
 	number   int // of the run that counts
 	cancel   context.CancelFunc
 	finished chan struct{}
+	painter  painter
+	width    int // of the chart, pixels
+	painted  sync.WaitGroup
+}
+
+// TuneAround is a surrounding, and whether the stone is judged in it.
+type TuneAround struct {
+	Around
+	Chosen bool
 }
 
 // NewTune returns the state before a plan was opened: light return, face-up, the usual
 // machine. do hands work to the window's goroutine, in order, without waiting for it;
 // onChange is called there after every change.
 func NewTune(do func(func()), onChange func()) *Tune {
-	return &Tune{
+	t := &Tune{
 		Aims: []tune.Aim{{Measure: tune.LightReturn, Weight: 1}}, Tilts: []facets.Angle{0},
 		Limits: tune.Limits{LeastFacetMM: tune.UsualFacetMM, KeepRatio: 0.01},
 		Step:   0.1, Machine: tune.UsualMachine(), Draws: 1000, do: do, onChange: onChange,
 	}
+	t.painter = painter{do: do, open: &t.painted}
+	return t
 }
 
-// SetPlan takes another state of the plan. Choices and limits of tiers that are still
-// there stay as they were; the first plan has its mains chosen.
+// SetPlan takes another state of the plan, or of how it is looked at. Choices and limits
+// of tiers that are still there stay as they were; another plan has its mains chosen.
 func (t *Tune) SetPlan(plan *facets.Plan, material *gems.Material, around []Around, head facets.Angle) {
+	seen := make([]TuneAround, len(around))
+	same := t.plan == plan && t.head == head && len(around) == len(t.Seen)
+	for i, a := range around {
+		seen[i] = TuneAround{a, i == 0}
+		if i < len(t.Seen) {
+			seen[i].Chosen = t.Seen[i].Chosen
+			same = same && t.Seen[i].Around == a
+		}
+	}
+	if same {
+		return
+	}
 	t.Stop()
 	before := t.Choices
-	t.plan, t.material, t.around, t.head = plan, material, around, head
+	if t.plan != nil && (t.plan.Name != plan.Name || t.plan.File != plan.File) {
+		before = nil
+	}
+	t.plan, t.material, t.Seen, t.head = plan, material, seen, head
 	pattern := tune.PlanPattern{Plan: plan}
 	t.Choices = nil
+	chosen := false
 	for _, v := range pattern.Variables() {
 		c := TuneChoice{Variable: v}
 		for _, old := range before {
 			if old.Name == v.Name {
-				c.Chosen, c.Low, c.High = old.Chosen, old.Low, old.High
+				c.Chosen = old.Chosen
+				if old.Low <= v.Now && v.Now <= old.High { // else they were meant for another place
+					c.Low, c.High = old.Low, old.High
+				}
 			}
 		}
+		chosen = chosen || c.Chosen
 		t.Choices = append(t.Choices, c)
 	}
-	if len(before) == 0 {
+	if !chosen {
 		for _, name := range strings.Split(strings.Join(tune.Mains(pattern), "+"), "+") {
 			for i := range t.Choices {
 				t.Choices[i].Chosen = t.Choices[i].Chosen || t.Choices[i].Name == name
 			}
 		}
 	}
+	t.onChange()
+}
+
+// SeeIn has the stone judged in a surrounding, or not.
+func (t *Tune) SeeIn(i int, chosen bool) {
+	t.Seen[i].Chosen = chosen
+	t.onChange()
+}
+
+// Ask takes another question. The answer to the last one stays until it is asked.
+func (t *Tune) Ask(task TuneTask) {
+	t.Task = task
+	t.onChange()
+}
+
+// Aim takes other goals.
+func (t *Tune) Aim(aims []tune.Aim) {
+	t.Aims = aims
 	t.onChange()
 }
 
@@ -181,13 +240,28 @@ func (t *Tune) problem() (*tune.Problem, error) {
 	p := &tune.Problem{Pattern: tune.PlanPattern{Plan: t.plan}, Material: t.material, Limits: t.Limits, Head: t.head, Seed: 1,
 		Workers: max(1, runtime.GOMAXPROCS(0)-1)} // the window stays alive
 	p.Goal = tune.Goal{Aims: t.Aims, Worst: t.Worst}
-	for _, s := range surroundings(t.around) {
-		for _, tilt := range t.Tilts {
-			p.Goal.Cases = append(p.Goal.Cases, tune.Case{Surrounding: s, View: trace.View{Tilt: tilt}})
+	var around []Around
+	for _, a := range t.Seen {
+		if a.Chosen {
+			around = append(around, a.Around)
 		}
+	}
+	if len(around) == 0 {
+		return p, errors.New("no surrounding is chosen; say in what the stone is seen")
+	}
+	for _, s := range surroundings(around) {
+		for _, tilt := range t.Tilts {
+			p.Goal.Cases = append(p.Goal.Cases, tune.Case{Surrounding: s, View: trace.View{Tilt: tilt}, Light: t.Light})
+		}
+	}
+	if p.Limits.MainMargin > 0 || p.Limits.BreakMargin > 0 {
+		p.Limits.MarginIn = around[0].Medium
 	}
 	var err error
 	p.Variables, err = t.variables(p.Pattern)
+	if t.Task == TellErrors { // it varies nothing
+		err = nil
+	}
 	return p, err
 }
 
@@ -195,10 +269,14 @@ func (t *Tune) problem() (*tune.Problem, error) {
 func (t *Tune) Begin() {
 	t.Stop()
 	t.Trouble, t.Stopped, t.Start, t.Best, t.StartPicture, t.BestPicture = nil, false, nil, nil, nil, nil
-	t.Outcome, t.Field, t.Tolerance, t.Front, t.Moved = nil, nil, nil, nil, nil
+	t.Outcome, t.Field, t.Tolerance, t.Front, t.Moved, t.Pick, t.Chart = nil, nil, nil, nil, nil, nil, nil
+	t.painter.forget()
 	p, err := t.problem()
 	if err == nil && t.Task == ShowField && len(p.Variables) != 2 {
 		err = fmt.Errorf("a field lies over two things that vary, and %d are chosen", len(p.Variables))
+	}
+	if err == nil && t.Task == TradeTwo && len(p.Goal.Aims) != 2 {
+		err = errors.New("a trade-off is between two goals; name the second one")
 	}
 	if err == nil && t.Task == MoveMaterial && t.To == nil {
 		err = errors.New("choose the material to move to")
@@ -210,9 +288,9 @@ func (t *Tune) Begin() {
 	}
 	ctx, cancel := context.WithCancel(context.Background())
 	t.number++
-	t.variablesUsed = p.Variables
-	t.Running, t.Phase, t.Done, t.cancel, t.finished = true, "beginning", 0, cancel, make(chan struct{})
-	r := &tuneRun{tune: t, number: t.number, problem: p, task: t.Task, to: t.To, machine: t.Machine, draws: t.Draws, keep: t.KeepFile,
+	t.variablesUsed, t.aimsUsed, t.limitsUsed, t.planUsed = p.Variables, p.Goal.Aims, p.Limits, t.plan
+	t.Running, t.Phase, t.Done, t.cancel, t.finished = true, t.Task.doing(), 0, cancel, make(chan struct{})
+	r := &tuneRun{tune: t, number: t.number, problem: p, task: t.Task, to: t.To, machine: t.Machine, draws: t.Draws, cells: t.Cells, keep: t.KeepFile,
 		plan: t.plan, choose: t.frozen(), pace: newPace()}
 	finished := t.finished
 	go func() {
@@ -245,6 +323,7 @@ func (t *Tune) Wait() {
 	if t.finished != nil {
 		<-t.finished
 	}
+	t.painted.Wait()
 }
 
 func (t *Tune) ended(number int, err error, cancelled bool) {
@@ -259,66 +338,6 @@ func (t *Tune) ended(number int, err error, cancelled bool) {
 	t.onChange()
 }
 
-// Kept returns the plan as the best so far has it, false before there is one that fits.
-func (t *Tune) Kept() (*facets.Plan, bool) {
-	if t.Moved != nil && t.Moved.FoundPlan != nil {
-		plan := t.Moved.FoundPlan.Clone()
-		plan.Material = facets.MaterialRef{Key: t.Moved.To.Key}
-		return plan, true
-	}
-	if t.Best == nil || !t.Best.Fit {
-		return nil, false
-	}
-	return t.planOf(t.Best), true
-}
-
-// Picked returns the plan of a point of the front.
-func (t *Tune) Picked(point int) *facets.Plan { return t.planOf(&t.Front.Points[point]) }
-
-func (t *Tune) planOf(trial *tune.Trial) *facets.Plan {
-	names := make([]string, len(t.variablesUsed))
-	for i, v := range t.variablesUsed {
-		names[i] = v.Name
-	}
-	return tune.PlanPattern{Plan: t.plan}.With(names, trial.Values)
-}
-
-// Changes tells a cutter what the best so far changes, a line a tier.
-func (t *Tune) Changes() []string {
-	if t.Best == nil {
-		return nil
-	}
-	var lines []string
-	for i, v := range t.variablesUsed {
-		number := func(x float64) string { return strconv.FormatFloat(x, 'f', 3, 64) }
-		if v.Unit == "degrees" {
-			number = func(x float64) string { return strconv.FormatFloat(x, 'f', 2, 64) + "°" }
-		}
-		by := t.Best.Values[i] - v.Now
-		words := "as it is"
-		switch {
-		case math.Abs(by) < 5e-4:
-		case v.Unit == "degrees" && by > 0:
-			words = number(by) + " steeper"
-		case v.Unit == "degrees":
-			words = number(-by) + " flatter"
-		default:
-			words = fmt.Sprintf("%+.3f", by)
-		}
-		lines = append(lines, fmt.Sprintf("%s  %s → %s  %s", v.Name, number(v.Now), number(t.Best.Values[i]), words))
-	}
-	return lines
-}
-
-// FieldPicture draws the field so far as a picture with so many pixels to the millimetre,
-// nil before there is one.
-func (t *Tune) FieldPicture(perMM float64) *image.RGBA {
-	if t.Field == nil {
-		return nil
-	}
-	return chart.Field(t.Field, chart.FieldChart{Title: t.plan.Name, Goal: "goal"}).Raster(perMM)
-}
-
 // tuneRun is one run; it belongs to its own goroutine.
 type tuneRun struct {
 	tune    *Tune
@@ -328,6 +347,7 @@ type tuneRun struct {
 	to      *gems.Material
 	machine tune.Machine
 	draws   int
+	cells   int
 	keep    string
 	plan    *facets.Plan
 	choose  func(tune.Pattern) ([]tune.Variable, error)
@@ -341,6 +361,7 @@ func (r *tuneRun) hand(take func(t *Tune)) {
 	t.do(func() {
 		if r.number == t.number {
 			take(t)
+			t.paintChart()
 			t.onChange()
 		}
 	})
@@ -383,7 +404,7 @@ func (r *tuneRun) work(ctx context.Context) error {
 	}
 	switch r.task {
 	case ShowField:
-		f, err := tune.Sweep(ctx, r.problem, tune.FieldSettings{}, memory, func(f *tune.Field) {
+		f, err := tune.Sweep(ctx, r.problem, tune.FieldSettings{Columns: r.cells, Rows: r.cells}, memory, func(f *tune.Field) {
 			if r.pace.due(time.Now()) {
 				r.hand(func(t *Tune) { t.Field, t.Done = f, f.Done })
 			}
@@ -475,7 +496,7 @@ func (r *tuneRun) paintBest(ctx context.Context) {
 }
 
 // tunePixels is the edge of the two pictures.
-const tunePixels = 160
+const tunePixels = 240
 
 // picture paints the light return of a trial, of the plan as it stands for nil; nil if it
 // cannot be had.

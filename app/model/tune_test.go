@@ -68,13 +68,18 @@ func tuneRoom(t *testing.T) (room *Tune, settle func()) {
 	room.SetPlan(plan, quartz, []Around{{Medium: air}}, 10*facets.Degree)
 	room.Step = 1
 	return room, func() {
-		room.Wait()
-		mu.Lock()
-		all := queue
-		queue = nil
-		mu.Unlock()
-		for _, f := range all {
-			f()
+		for {
+			room.Wait()
+			mu.Lock()
+			all := queue
+			queue = nil
+			mu.Unlock()
+			if len(all) == 0 {
+				return
+			}
+			for _, f := range all {
+				f()
+			}
 		}
 	}
 }
@@ -121,7 +126,7 @@ func TestTuneRoomFindsBetter(t *testing.T) {
 		t.Errorf("kept %v of %v", plan.Tiers[1].Angle, room.Best.Values)
 	}
 	lines := room.Changes()
-	if len(lines) != 1 || !strings.HasPrefix(lines[0], "P  40.00° → ") || !strings.HasSuffix(lines[0], "steeper") {
+	if len(lines) != 1 || lines[0][0] != "P" || !strings.HasPrefix(lines[0][1], "40.00° to ") || !strings.HasSuffix(lines[0][1], "steeper") {
 		t.Errorf("%q", lines)
 	}
 }
@@ -193,7 +198,94 @@ func TestTuneRoomTasks(t *testing.T) {
 	if room.Trouble != nil || room.Front == nil || len(room.Front.Points) == 0 {
 		t.Fatalf("front %v, trouble %v", room.Front, room.Trouble)
 	}
-	if plan := room.Picked(0); plan.Tiers[1].Angle.Degrees() != room.Front.Points[0].Values[0] {
-		t.Errorf("picked %v of %v", plan.Tiers[1].Angle, room.Front.Points[0].Values)
+	room.PickNext(1, 0)
+	if plan, ok := room.Kept(); !ok || plan.Tiers[1].Angle.Degrees() != room.Front.Points[0].Values[0] {
+		t.Errorf("picked %v, kept %v", room.Pick, ok)
+	}
+}
+
+// A field is shown as it is traced, a place of it is picked by pointer or keys, and what is
+// kept stands on the machine's steps.
+func TestTuneRoomField(t *testing.T) {
+	room, settle := tuneRoom(t)
+	room.Task, room.Step = ShowField, 0.1
+	for name, limits := range map[string][2]float64{"P": {40, 44}, "C": {38, 42}} {
+		room.Choices[choice(t, room, name)].Chosen = true
+		if err := room.SetLimits(choice(t, room, name), limits[0], limits[1]); err != nil {
+			t.Fatal(err)
+		}
+	}
+	room.Cells = 6
+	room.SetChartWidth(200)
+	room.Begin()
+	settle()
+	if room.Trouble != nil || room.Field == nil || !room.Charted() || room.Chart == nil {
+		t.Fatalf("field %v, chart %v, trouble %v", room.Field != nil, room.Chart != nil, room.Trouble)
+	}
+	best, _ := room.Field.Best()
+	if room.Shown() == nil || room.Shown().Score != room.Field.Trials[best].Score {
+		t.Error("before a place is picked, the best does not count")
+	}
+	// The lower left corner of the field is its first cell: the least of both. It lies right
+	// of the numbers and over the words, by the chart's own measures.
+	found := false
+	for y := 1.0; y > 0 && !found; y -= 0.01 {
+		for x := 0.0; x < 1 && !found; x += 0.01 {
+			room.PickAt(x, y)
+			found = room.Pick != nil
+		}
+	}
+	if !found || room.Pick.Values[0] != 40 || room.Pick.Values[1] != 38 {
+		t.Fatalf("lower left: %+v", room.Pick)
+	}
+	room.PickNext(1, 0)
+	if v := room.Pick.Values; v[0] <= 40 || v[0] > 40+4.0/5+1e-9 || v[1] != 38 {
+		t.Errorf("one to the right: %v", v)
+	}
+	plan, ok := room.Kept()
+	if room.Pick.Fit != ok {
+		t.Errorf("kept %v of a stone that fits %v", ok, room.Pick.Fit)
+	}
+	if ok && plan.Tiers[1].Angle.Degrees() != 40.8 {
+		t.Errorf("kept P at %v, want it on steps of 0.1°", plan.Tiers[1].Angle)
+	}
+	room.PickAt(0, 0)
+	if room.Pick != nil {
+		t.Error("beside the field something is picked")
+	}
+}
+
+// What was found for a plan is not taken into another one; limits of a tier do not
+// outlive the plan that they were set for.
+func TestTuneRoomFollowsThePlan(t *testing.T) {
+	room, settle := tuneRoom(t)
+	p := choice(t, room, "P")
+	if err := room.SetLimits(p, 39, 45); err != nil {
+		t.Fatal(err)
+	}
+	room.Begin()
+	settle()
+	if _, ok := room.Kept(); !ok {
+		t.Fatal("nothing is kept")
+	}
+	changed := room.plan.Clone()
+	changed.WidthMM = 7
+	room.SetPlan(changed, room.material, []Around{room.Seen[0].Around}, room.head)
+	if _, ok := room.Kept(); ok {
+		t.Error("what was found for the old plan can be taken into the new one")
+	}
+	if room.Choices[p].Low != 39 {
+		t.Errorf("the limits of the same plan are lost: %v", room.Choices[p])
+	}
+	other := room.plan.Clone()
+	other.Name = "Another"
+	room.SetPlan(other, room.material, []Around{room.Seen[0].Around}, room.head)
+	if room.Choices[p].Low == 39 || !room.Choices[p].Chosen {
+		t.Errorf("the limits of another plan are kept: %v", room.Choices[p])
+	}
+	room.SeeIn(0, false)
+	room.Begin()
+	if room.Running || room.Trouble == nil || !strings.Contains(room.Trouble.Error(), "surrounding") {
+		t.Errorf("seen in nothing: %v", room.Trouble)
 	}
 }

@@ -12,9 +12,11 @@ import (
 	"pavilight/gems"
 )
 
-// chooseMaterial lets the user pick what the stone is made of, from a list that
-// narrows as they type.
-func (w *window) chooseMaterial() {
+// chooseMaterial lets the user pick what the stone is made of.
+func (w *window) chooseMaterial() { w.pickMaterial("What the stone is made of", w.bench.SetMaterial) }
+
+// pickMaterial lets the user pick a material from a list that narrows as they type.
+func (w *window) pickMaterial(title string, then func(*gems.Material)) {
 	all := gems.Stones()
 	shown := all
 	var d *dialog.CustomDialog
@@ -32,7 +34,7 @@ func (w *window) chooseMaterial() {
 		})
 	take := func(m *gems.Material) {
 		d.Hide()
-		w.bench.SetMaterial(m)
+		then(m)
 	}
 	list.OnSelected = func(i widget.ListItemID) {
 		if i < len(shown) {
@@ -53,7 +55,7 @@ func (w *window) chooseMaterial() {
 		}
 	}
 	size := fyne.NewSize(520, min(440, w.win.Canvas().Size().Height-200))
-	d = dialog.NewCustom("What the stone is made of", "Cancel",
+	d = dialog.NewCustom(title, "Cancel",
 		container.NewGridWrap(size, container.NewBorder(filter, nil, nil, nil, list)), w.win)
 	w.raise(d)
 	w.win.Canvas().Focus(filter)

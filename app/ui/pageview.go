@@ -21,8 +21,10 @@ type pageView struct {
 	picture *canvas.Image
 	shape   float64 // height over width
 	whole   bool
-	onWidth func(pixels int) // the page takes so many across; may be nil
-	turn    func(by int)     // to another page
+	onWidth func(pixels int)          // the page takes so many across; may be nil
+	turn    func(by int)              // to another page
+	pick    func(x, y float64)        // a place of the picture, in shares from its top left; may be nil
+	keys    func(*fyne.KeyEvent) bool // takes keys first; may be nil
 	stray   func(*fyne.KeyEvent)
 	scroll  *container.Scroll
 	focused bool
@@ -85,25 +87,41 @@ func (p *pageView) MouseDown(*desktop.MouseEvent) {
 	}
 }
 
-// MouseUp is not used.
-func (p *pageView) MouseUp(*desktop.MouseEvent) {}
+// MouseUp picks the place under the pointer.
+func (p *pageView) MouseUp(e *desktop.MouseEvent) {
+	if p.pick == nil {
+		return
+	}
+	at, size := p.picture.Position(), p.picture.Size()
+	x, y := float64((e.Position.X-at.X)/size.Width), float64((e.Position.Y-at.Y)/size.Height)
+	if x >= 0 && y >= 0 && x <= 1 && y <= 1 {
+		p.pick(x, y)
+	}
+}
 
 // TypedKey turns and moves the page.
 func (p *pageView) TypedKey(e *fyne.KeyEvent) {
+	if p.keys != nil && p.keys(e) {
+		return
+	}
 	const step = 60
+	turn := p.turn
+	if turn == nil {
+		turn = func(int) {}
+	}
 	move := func(by float32) {
 		most := max(0, p.Size().Height-p.scroll.Size().Height)
 		p.scroll.ScrollToOffset(fyne.NewPos(0, min(most, max(0, p.scroll.Offset.Y+by))))
 	}
 	switch e.Name {
 	case fyne.KeyPageDown, fyne.KeyRight:
-		p.turn(1)
+		turn(1)
 	case fyne.KeyPageUp, fyne.KeyLeft:
-		p.turn(-1)
+		turn(-1)
 	case fyne.KeyHome:
-		p.turn(-1 << 20)
+		turn(-1 << 20)
 	case fyne.KeyEnd:
-		p.turn(1 << 20)
+		turn(1 << 20)
 	case fyne.KeyDown:
 		move(step)
 	case fyne.KeyUp:
@@ -171,6 +189,8 @@ func (r *pageViewRenderer) Refresh() {
 	if r.p.focused {
 		r.edge.FillColor = themed(theme.ColorNameFocus)
 	}
+	empty := r.p.picture.Image == nil && r.p.pick != nil // a chart comes as a whole
+	r.edge.Hidden, r.paper.Hidden = empty, empty
 	r.Layout(r.p.Size())
 	r.p.picture.Refresh()
 	canvas.Refresh(r.p)

@@ -145,8 +145,9 @@ func (*squareLayout) Layout(objects []fyne.CanvasObject, size fyne.Size) {
 
 // factTable is a list of names and values; a long value takes several lines.
 type factTable struct {
-	box  *fyne.Container
-	rows []factRow
+	box   *fyne.Container
+	rows  []factRow
+	names float32 // their width
 }
 
 type factRow struct {
@@ -155,7 +156,7 @@ type factRow struct {
 }
 
 func newFactTable() *factTable {
-	t := &factTable{}
+	t := &factTable{names: factNames}
 	t.box = &fyne.Container{Layout: t}
 	return t
 }
@@ -181,7 +182,7 @@ func (t *factTable) show(facts [][2]string) {
 	t.box.Refresh()
 }
 
-// factNames is the width of the names.
+// factNames is the usual width of the names.
 const factNames = 100
 
 // each walks the rows with the place of each, and returns the height of all.
@@ -191,7 +192,7 @@ func (t *factTable) each(width float32, do func(r factRow, y, high float32)) flo
 		if r.value.text == "" && i > 0 {
 			y += 8 // before a heading
 		}
-		high := max(lineHeight(), r.value.high(width-factNames)) + 1
+		high := max(lineHeight(), r.value.high(width-t.names)) + 1
 		do(r, y, high)
 		y += high
 	}
@@ -207,7 +208,7 @@ func (t *factTable) MinSize([]fyne.CanvasObject) fyne.Size {
 // Layout sets the values in one column.
 func (t *factTable) Layout(_ []fyne.CanvasObject, size fyne.Size) {
 	t.each(size.Width, func(r factRow, y, high float32) {
-		place(r.name, 0, y, factNames-6, lineHeight())
-		place(r.value, factNames, y, max(0, size.Width-factNames), high)
+		place(r.name, 0, y, t.names-6, lineHeight())
+		place(r.value, t.names, y, max(0, size.Width-t.names), high)
 	})
 }

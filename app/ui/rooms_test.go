@@ -116,6 +116,73 @@ func TestMachineIsDescribed(t *testing.T) {
 	}
 }
 
+// The room for tuning finds a better plan by hand; it is taken as one step that can be
+// undone.
+func TestTuneRoomFindsAndTakes(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	r.refined(t)
+	r.enter(tuneRoom)
+	u := &r.tuning
+	if !r.tuneBox.Visible() || r.body.Visible() || len(u.fields) == 0 || !u.take.Disabled() || !u.hinted.Visible() {
+		t.Fatalf("shown %v, %d choices, nothing to take yet %v", r.tuneBox.Visible(), len(u.fields), u.take.Disabled())
+	}
+	for i, c := range u.tune.Choices {
+		u.tune.Choose(i, c.Name == "P1")
+		if c.Name == "P1" {
+			if err := u.tune.SetLimits(i, 41, 41.5); err != nil {
+				t.Fatal(err)
+			}
+		}
+	}
+	test.Tap(u.begin)
+	if u.begin.Text != "Stop" || !r.running().active || r.stop.Disabled() {
+		t.Errorf("while it runs: %q, active %v", u.begin.Text, r.running().active)
+	}
+	r.until(t, "an answer", func() bool { return !u.tune.Running })
+	if u.tune.Trouble != nil || u.verdict.Text == "" || u.before.Image == nil || u.after.Image == nil || u.take.Disabled() {
+		t.Fatalf("trouble %v, verdict %q, to be taken %v", u.tune.Trouble, u.verdict.Text, !u.take.Disabled())
+	}
+	want := u.tune.Best.Values[0]
+	test.Tap(u.take)
+	if got := r.angle(t, "P1"); got != want || r.room != lookRoom {
+		t.Errorf("taken: P1 at %v, want %v", got, want)
+	}
+	if name, ok := r.bench.Doc.UndoName(); !ok || name != "tuned angles" {
+		t.Errorf("to be undone: %q", name)
+	}
+	r.undo()
+	if got := r.angle(t, "P1"); got != 41.5 {
+		t.Errorf("after Undo P1 at %v", got)
+	}
+}
+
+// Each question shows the parts that it has, and Stop in the header ends it.
+func TestTuneRoomAsksWhatTheQuestionNeeds(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	r.refined(t)
+	r.enter(tuneRoom)
+	u := &r.tuning
+	for _, task := range model.TuneTasks() {
+		u.tune.Ask(task)
+		errs := task == model.TellErrors
+		if u.slips.Visible() != errs || u.vary.Visible() == errs || u.to.Visible() != (task == model.MoveMaterial) {
+			t.Errorf("%v: errors %v, tiers %v, material %v", task, u.slips.Visible(), u.vary.Visible(), u.to.Visible())
+		}
+	}
+	u.tune.Ask(model.TradeTwo)
+	test.Tap(u.begin)
+	if !strings.Contains(u.verdict.Text, "two goals") {
+		t.Errorf("one goal to trade off: %q", u.verdict.Text)
+	}
+	u.tune.Ask(model.TellErrors)
+	test.Tap(u.begin)
+	r.stopOrResume()
+	r.until(t, "the end", func() bool { return !u.tune.Running })
+	if !u.tune.Stopped {
+		t.Error("Stop in the header did not end it")
+	}
+}
+
 // Nothing of the rooms lies outside the window at the two sizes.
 func TestRoomsFitTheWindow(t *testing.T) {
 	for _, size := range []fyne.Size{{Width: 1360, Height: 860}, {Width: 1024, Height: 700}} {
@@ -132,6 +199,10 @@ func TestRoomsFitTheWindow(t *testing.T) {
 		inside("print", c.print)
 		inside("page scroll", c.page.scroll)
 		inside("turner", c.turner)
+		r.enter(tuneRoom)
+		inside("begin", r.tuning.begin)
+		inside("take", r.tuning.take)
+		r.enter(cutRoom)
 		r.showFilm(true)
 		c.cut.GoTo(c.cut.Steps())
 		inside("solid", c.film.solid)

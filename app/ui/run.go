@@ -8,6 +8,7 @@ import (
 	"context"
 	"os"
 	"path/filepath"
+	"sync/atomic"
 	"time"
 
 	"fyne.io/fyne/v2"
@@ -54,9 +55,20 @@ func Run(ctx context.Context, o Options) error {
 		w.beginKeeping(filepath.Join(a.Storage().RootURI().Path(), "unsaved"))
 		w.started(o.Path)
 	})
-	stop := context.AfterFunc(ctx, func() { post(w.closeKept) })
+	// The toolkit hears signals, too, and may have ended its loop by the time that ctx tells
+	// of one; nothing may be asked of its windows then.
+	var over atomic.Bool
+	a.Lifecycle().SetOnStopped(func() { over.Store(true) })
+	stop := context.AfterFunc(ctx, func() {
+		post(func() {
+			if !over.Load() {
+				w.closeKept()
+			}
+		})
+	})
 	defer stop()
 	w.win.ShowAndRun()
+	over.Store(true)
 	if !w.closed { // a signal ended the toolkit's loop
 		w.keepNow()
 	}

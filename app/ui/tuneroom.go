@@ -1,219 +1,527 @@
 package ui
 
 import (
+	"errors"
 	"fmt"
 	"image"
+	"strconv"
 	"strings"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
 	"fyne.io/fyne/v2/container"
+	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/layout"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
 
 	"pavilight/app/model"
 	"pavilight/facets"
+	"pavilight/gems"
+	"pavilight/trace"
 	"pavilight/trace/tune"
 )
 
 // tuneBench is the room where better angles are searched for.
 type tuneBench struct {
-	tune    *model.Tune
-	of      *facets.Plan // the plan that is being tuned
+	tune *model.Tune
+
+	// the question
+	box     *fyne.Container // all of it
+	goals   *fyne.Container
+	other   *fyne.Container // how much the second goal counts
+	worst   *widget.Check
+	light   *fyne.Container
+	to      *fyne.Container
+	toName  *chooser
+	vary    *fyne.Container
+	limits  *fyne.Container
+	slips   *fyne.Container
+	seen    *fyne.Container
+	seenIn  string // of the checks that were built
 	choices *fyne.Container
 	shape   string // of the choices that were built
+	checks  []*widget.Check
 	fields  [][2]*numberField
-	search  *widget.Button
-	take    *widget.Button
-	line    *progressLine
-	state   *wrapped
+	record  *widget.Check
+	begin   *widget.Button
+
+	// the answer
+	hint    *wrapped
+	hinted  *fyne.Container
+	pair    *fyne.Container
 	before  *canvas.Image
 	after   *canvas.Image
-	numbers [2]*line
+	numbers [2]*wrapped
+	chart   *pageView
+	title   *line
 	changes *factTable
-	verdict *wrapped
+	verdict *widget.Label
+	take    *widget.Button
 }
 
-// goals are what the search can be for, in words.
-func goals() []struct {
-	words string
-	aims  []tune.Aim
-} {
-	return []struct {
-		words string
-		aims  []tune.Aim
-	}{
-		{"Most light return", []tune.Aim{{Measure: tune.LightReturn, Weight: 1}}},
-		{"Least leakage", []tune.Aim{{Measure: tune.Leakage, Weight: 1}}},
-		{"Smallest leaky area", []tune.Aim{{Measure: tune.LeakyArea, Weight: 1}}},
-		{"Light return and little shade of the head", []tune.Aim{{Measure: tune.LightReturn, Weight: 1}, {Measure: tune.HeadShade, Weight: 1}}},
-	}
-}
+// tuneWide is the width of the pane of questions.
+const tuneWide = 330
 
 func (w *window) buildTuneRoom() fyne.CanvasObject {
 	t := &w.tuning
 	t.tune = model.NewTune(w.do, w.refreshTune)
-	var words []string
-	for _, g := range goals() {
-		words = append(words, g.words)
+	question := w.tuneQuestion()
+	t.begin = widget.NewButton("Search", w.beginTune)
+	t.begin.Importance = widget.HighImportance
+	left := pane(container.New(layout.NewCustomPaddedLayout(12, 12, 14, 8),
+		container.NewBorder(nil, container.New(layout.NewCustomPaddedLayout(8, 0, 0, 6), t.begin), nil, nil, container.NewVScroll(question))))
+	t.box = container.New(&sideLayout{width: tuneWide}, left, pane(w.tuneAnswer()))
+	w.refreshTune()
+	return t.box
+}
+
+func goalWords(m tune.Measure) string {
+	if m == tune.HeadShade {
+		return "least shade of the head"
 	}
-	goal := widget.NewSelect(words, nil)
-	goal.SetSelected(words[0])
-	goal.OnChanged = func(chosen string) {
-		for _, g := range goals() {
-			if g.words == chosen {
-				t.tune.Aims = g.aims
+	if m.Better() < 0 {
+		return "least " + m.Name()
+	}
+	return "most " + m.Name()
+}
+
+// tuneQuestion is the pane that asks.
+func (w *window) tuneQuestion() fyne.CanvasObject {
+	t := &w.tuning
+	label := func(s string) fyne.CanvasObject { return newWord(colourDim, theme.SizeNameText, s) }
+	heading := func(s string) fyne.CanvasObject {
+		return newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, s).bold()
+	}
+	column := func(o ...fyne.CanvasObject) *fyne.Container {
+		return container.New(layout.NewCustomPaddedVBoxLayout(4), o...)
+	}
+	row := func(words string, o fyne.CanvasObject) *fyne.Container {
+		return container.New(&formRow{}, label(words), o)
+	}
+	var tasks []string
+	for _, task := range model.TuneTasks() {
+		tasks = append(tasks, task.String())
+	}
+	task := widget.NewSelect(tasks, nil)
+	task.SetSelected(tasks[0])
+	task.OnChanged = func(chosen string) {
+		for _, one := range model.TuneTasks() {
+			if one.String() == chosen {
+				t.tune.Ask(one)
 			}
 		}
 	}
+
+	const none = "nothing else"
+	var words []string
+	for _, m := range tune.Measures() {
+		words = append(words, goalWords(m))
+	}
+	first, second := widget.NewSelect(words, nil), widget.NewSelect(append([]string{none}, words...), nil)
+	first.SetSelected(words[0])
+	second.SetSelected(none)
+	counts := newNumberField(func(s string) (float64, error) { return model.ParseNumber(s, "") }, plainNumber, 0.1)
+	weight := 1.0
+	aims := func() {
+		var list []tune.Aim
+		for k, chosen := range []string{first.Selected, second.Selected} {
+			for _, m := range tune.Measures() {
+				if goalWords(m) == chosen {
+					list = append(list, tune.Aim{Measure: m, Weight: m.Better() * []float64{1, weight}[k]})
+				}
+			}
+		}
+		t.tune.Aim(list)
+	}
+	first.OnChanged = func(string) { aims() }
+	second.OnChanged = func(string) { aims() }
+	counts.commit = func(v float64) error {
+		if !(v > 0 && v <= 1000) {
+			return errors.New("the second goal counts more than 0 and at most 1000 times")
+		}
+		weight = v
+		aims()
+		return nil
+	}
+	counts.trouble = w.say
+	counts.show(weight)
+	t.other = row("counting", container.NewBorder(nil, nil, nil, label("times"), counts))
+	light := widget.NewSelect(trace.LightNames(), nil)
+	light.SetSelected("even")
+	light.OnChanged = func(name string) {
+		l, err := trace.FindLight(name)
+		w.say(err)
+		if name == "even" {
+			l = nil
+		}
+		t.tune.Light = l
+	}
+	t.light = row("Light", light)
+	t.goals = column(heading("What it shall be good at"), row("First", first), row("And", second), t.other, t.light)
+
+	t.seen = container.New(layout.NewCustomPaddedVBoxLayout(0))
 	rocked := widget.NewCheck("also rocked by 10° either way", func(on bool) {
 		t.tune.Tilts = []facets.Angle{0}
 		if on {
 			t.tune.Tilts = []facets.Angle{0, 10 * facets.Degree, -10 * facets.Degree}
 		}
 	})
-	worst := widget.NewCheck("judged by the worst of them", func(on bool) { t.tune.Worst = on })
-	t.search = widget.NewButton("Search", func() {
-		if t.tune.Running {
-			t.tune.Stop()
-		} else {
-			w.commitTyping()
-			t.tune.Begin()
-		}
-	})
-	t.search.Importance = widget.HighImportance
-	t.take = widget.NewButton("Take these angles", w.takeTuned)
-	t.line, t.state = newProgressLine(), newWrapped(colourDim, theme.SizeNameText)
-	t.choices = container.New(layout.NewCustomPaddedVBoxLayout(3))
-	heading := func(s string) fyne.CanvasObject {
-		return newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, s).bold()
+	t.worst = widget.NewCheck("judged by the worst of these", func(on bool) { t.tune.Worst = on })
+	t.toName = newChooser(theme.SizeNameText, nil)
+	t.toName.setText("choose…")
+	t.toName.opens = func() {
+		w.pickMaterial("What to cut it of", func(m *gems.Material) {
+			t.toName.setText(m.Name)
+			t.tune.To = m
+		})
 	}
-	top := container.New(layout.NewCustomPaddedVBoxLayout(6), heading("What it shall be good at"), goal, rocked, worst, gap(1),
-		heading("What may vary"), newWord(colourDim, theme.SizeNameCaptionText, "ticked tiers, between these limits"))
-	foot := container.New(layout.NewCustomPaddedVBoxLayout(6), t.search, t.line,
-		container.NewGridWrap(fyne.NewSize(tuneWide-28, 4*lineHeight()), t.state))
-	left := pane(container.New(layout.NewCustomPaddedLayout(14, 10, 14, 14),
-		container.NewBorder(top, foot, nil, nil, container.NewVScroll(t.choices))))
+	t.to = row("Material", t.toName)
+	t.choices = container.New(layout.NewCustomPaddedVBoxLayout(3))
+	t.vary = column(heading("What may vary"),
+		newWord(colourDim, theme.SizeNameCaptionText, "ticked tiers, between these limits; corners are kept"), t.choices)
+	t.limits = column(append([]fyne.CanvasObject{heading("Limits of the lap")}, w.limitRows(row)...)...)
+	t.slips = column(append([]fyne.CanvasObject{heading("Errors of machine and hand"),
+		newWord(colourDim, theme.SizeNameCaptionText, tune.UsualMachineSource+"; yours may be others")}, w.slipRows(row)...)...)
+	t.record = widget.NewCheck("keep a record to go on from", w.chooseRecord)
+	return container.New(layout.NewCustomPaddedLayout(0, 0, 0, 12), container.New(layout.NewCustomPaddedVBoxLayout(10),
+		task, t.to, t.goals, column(heading("Seen in"), t.seen, rocked, t.worst), t.vary, t.limits, t.slips, t.record))
+}
 
+func plainNumber(v float64) string { return strconv.FormatFloat(v, 'g', 6, 64) }
+
+// limitRows are the fields of the limits; an empty one demands nothing.
+func (w *window) limitRows(row func(string, fyne.CanvasObject) *fyne.Container) (rows []fyne.CanvasObject) {
+	t := &w.tuning
+	l := &t.tune.Limits
+	for _, f := range []struct {
+		name, unit string
+		value      *float64
+		most, step float64
+	}{
+		{"Facets from", "mm wide", &l.LeastFacetMM, 100, 0.05},
+		{"Girdle from", "mm thick", &l.GirdleMM, 100, 0.05},
+		{"Depth to", "% of width", &l.MostDepthPercent, 500, 1},
+		{"Crown to", "% of width", &l.MostCrownPercent, 500, 1},
+		{"Weight from", "ct", &l.LeastCarats, 1e5, 0.1},
+		{"Mains over", "° past critical", nil, 45, 0.5},
+		{"Others over", "° past critical", nil, 45, 0.5},
+		{"Angle steps", "°", &t.tune.Step, 5, 0.1},
+	} {
+		get, set := func() float64 { return *f.value }, func(v float64) { *f.value = v }
+		switch f.name {
+		case "Mains over":
+			get, set = func() float64 { return l.MainMargin.Degrees() }, func(v float64) { l.MainMargin = facets.Angle(v) * facets.Degree }
+		case "Others over":
+			get, set = func() float64 { return l.BreakMargin.Degrees() }, func(v float64) { l.BreakMargin = facets.Angle(v) * facets.Degree }
+		}
+		rows = append(rows, w.limitRow(row, f.name, f.unit, get, set, f.most, f.step))
+	}
+	return rows
+}
+
+// limitRow is one number with its unit; an empty field is 0.
+func (w *window) limitRow(row func(string, fyne.CanvasObject) *fyne.Container, name, unit string, get func() float64, set func(float64),
+	most, step float64) fyne.CanvasObject {
+	field := newNumberField(func(s string) (float64, error) {
+		if strings.TrimSpace(s) == "" {
+			return 0, nil
+		}
+		return model.ParseNumber(s, "")
+	}, func(v float64) string {
+		if v == 0 {
+			return ""
+		}
+		return plainNumber(v)
+	}, step)
+	field.SetPlaceHolder("–")
+	field.commit = func(v float64) error {
+		if !(v >= 0 && v <= most) {
+			return fmt.Errorf("%s: use 0 to %g", strings.ToLower(name), most)
+		}
+		set(v)
+		return nil
+	}
+	field.trouble = w.say
+	field.show(get())
+	return row(name, container.NewBorder(nil, nil, container.NewGridWrap(fyne.NewSize(74, field.MinSize().Height), field), nil,
+		newLine(colourDim, theme.SizeNameText).with(unit)))
+}
+
+// slipRows are the fields of the errors.
+func (w *window) slipRows(row func(string, fyne.CanvasObject) *fyne.Container) (rows []fyne.CanvasObject) {
+	m := &w.tuning.tune.Machine
+	angle := func(a *facets.Angle) (func() float64, func(float64)) {
+		return func() float64 { return a.Degrees() }, func(v float64) { *a = facets.Angle(v) * facets.Degree }
+	}
+	length := func(x *float64) (func() float64, func(float64)) {
+		return func() float64 { return *x }, func(v float64) { *x = v }
+	}
+	add := func(name, unit string, get func() float64, set func(float64), step float64) {
+		rows = append(rows, w.limitRow(row, name, unit, get, set, 10, step))
+	}
+	get, set := angle(&m.DopTilt)
+	add("Dop tilt", "° a side", get, set, 0.05)
+	get, set = angle(&m.Twist)
+	add("Twist", "° a side", get, set, 0.05)
+	get, set = length(&m.ShiftMM)
+	add("Shift", "mm a side", get, set, 0.01)
+	get, set = angle(&m.Angle)
+	add("Angle", "° a tier", get, set, 0.05)
+	get, set = angle(&m.Index)
+	add("Index", "° a tier", get, set, 0.05)
+	get, set = length(&m.OvercutMM)
+	add("Overcut", "mm a facet, at most", get, set, 0.01)
+	return rows
+}
+
+// tuneAnswer is the pane that answers.
+func (w *window) tuneAnswer() fyne.CanvasObject {
+	t := &w.tuning
+	t.hint = newWrapped(colourDim, theme.SizeNameText)
+	t.hinted = container.NewCenter(container.NewGridWrap(fyne.NewSize(360, 6*lineHeight()), t.hint))
 	picture := func() *canvas.Image {
 		return &canvas.Image{ScaleMode: canvas.ImageScaleFastest, FillMode: canvas.ImageFillContain}
 	}
 	t.before, t.after = picture(), picture()
 	var sides []fyne.CanvasObject
 	for k, name := range []string{"As it stands", "The best so far"} {
-		t.numbers[k] = newLine(theme.ColorNameForeground, theme.SizeNameText)
-		sides = append(sides, container.NewBorder(heading(name), t.numbers[k], nil, nil,
-			container.NewGridWrap(fyne.NewSquareSize(250), []*canvas.Image{t.before, t.after}[k])))
+		t.numbers[k] = newWrapped(theme.ColorNameForeground, theme.SizeNameText)
+		sides = append(sides, container.NewBorder(newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, name).bold(),
+			container.New(&linesLayout{2}, t.numbers[k]), nil, nil, []*canvas.Image{t.before, t.after}[k]))
 	}
+	legend := newWord(colourDim, theme.SizeNameCaptionText, "The pictures show light return in the first surrounding, from 0, dark, to 1, bright, as in Look.")
+	t.pair = container.New(layout.NewCustomPaddedLayout(14, 10, 16, 8),
+		container.NewBorder(nil, legend, nil, nil, container.New(&pairLayout{}, sides...)))
+	t.chart = newPageView(nil, w.strayKey)
+	t.chart.whole = true
+	t.chart.onWidth = t.tune.SetChartWidth
+	t.chart.pick = t.tune.PickAt
+	t.chart.keys = func(e *fyne.KeyEvent) bool {
+		by := map[fyne.KeyName][2]int{fyne.KeyLeft: {-1, 0}, fyne.KeyRight: {1, 0}, fyne.KeyUp: {0, 1}, fyne.KeyDown: {0, -1}}
+		step, ok := by[e.Name]
+		if ok {
+			t.tune.PickNext(step[0], step[1])
+		}
+		return ok
+	}
+	t.title = newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, "").bold()
 	t.changes = newFactTable()
-	t.verdict = newWrapped(theme.ColorNameForeground, theme.SizeNameText)
-	right := pane(container.New(layout.NewCustomPaddedLayout(14, 14, 18, 18), container.NewBorder(
-		container.NewHBox(sides[0], gap(30), sides[1]), nil, nil, nil,
-		container.NewBorder(container.NewGridWrap(fyne.NewSize(560, 4*lineHeight()), t.verdict),
-			container.NewHBox(t.take), nil, nil, container.NewVScroll(t.changes.box)))))
-	return container.New(&sideLayout{width: tuneWide}, left, right)
+	t.changes.names = 78
+	t.verdict = widget.NewLabel("")
+	t.verdict.Wrapping = fyne.TextWrapWord
+	t.verdict.Selectable = true
+	t.take = widget.NewButton("Take it into the plan", w.takeTuned)
+	words := container.New(layout.NewCustomPaddedLayout(14, 12, 8, 14), container.NewBorder(t.title, t.take, nil, nil,
+		container.NewVScroll(container.New(layout.NewCustomPaddedVBoxLayout(8), gap(1), t.changes.box,
+			container.New(layout.NewCustomPaddedLayout(-6, 0, -6, 0), t.verdict)))))
+	return container.New(&rightLayout{width: filmWords}, container.NewStack(t.hinted, t.pair, t.chart.scroll), words)
 }
 
-// tuneWide is the width of the pane of questions.
-const tuneWide = 330
-
-// enterTune takes the plan as it stands.
+// enterTune takes the plan as it stands, and how it is looked at.
 func (w *window) enterTune() {
-	if plan := w.bench.Doc.Plan(); w.tuning.of != plan {
-		material, err := model.MaterialOf(plan.Material)
-		if err != nil {
-			w.say(err)
+	plan := w.bench.Doc.Plan()
+	material, err := model.MaterialOf(plan.Material)
+	if err != nil {
+		w.say(err)
+		return
+	}
+	w.tuning.tune.SetPlan(plan, material, w.bench.Look.Around, w.bench.Look.Settings().Head)
+}
+
+func (w *window) beginTune() {
+	t := &w.tuning
+	if t.tune.Running {
+		t.tune.Stop()
+		return
+	}
+	w.commitTyping()
+	t.tune.Begin()
+}
+
+// chooseRecord asks for the file that remembers what was seen, or forgets it.
+func (w *window) chooseRecord(on bool) {
+	t := &w.tuning
+	if !on {
+		t.tune.KeepFile = ""
+		t.record.SetText("keep a record to go on from")
+		return
+	}
+	if t.tune.KeepFile != "" {
+		return
+	}
+	d := dialog.NewFileSave(func(f fyne.URIWriteCloser, err error) {
+		if err != nil || f == nil {
+			t.record.SetChecked(false)
+			if err != nil {
+				w.explain("The record cannot be kept there", err)
+			}
 			return
 		}
-		w.tuning.of = plan
-		w.tuning.tune.SetPlan(plan, material, w.bench.Look.Around[:1], w.bench.Look.Settings().Head)
-	}
+		t.tune.KeepFile = f.URI().Path()
+		f.Close() // nothing was opened: see writeLater
+		t.record.SetText("record: " + f.URI().Name())
+	}, w.win)
+	d.SetFileName(strings.TrimSuffix(w.bench.Doc.FileName(), ".toml") + "-tune.jsonl")
+	d.SetTitleText("Keep a record of what was seen")
+	w.showFileDialog(d)
 }
 
-// takeTuned makes the best so far the plan, as one step that can be undone.
+// takeTuned makes the answer the plan, as one step that can be undone.
 func (w *window) takeTuned() {
-	if plan, ok := w.tuning.tune.Kept(); ok {
-		w.bench.Adopt("tuned angles", plan)
-		w.enter(lookRoom)
+	t := &w.tuning
+	plan, ok := t.tune.Kept()
+	if !ok {
+		return
 	}
+	name := "tuned angles"
+	if t.tune.Moved != nil {
+		name = "move to " + t.tune.Moved.To.Name
+	}
+	w.bench.Adopt(name, plan)
+	w.enter(lookRoom)
+	w.report("Taken into the plan; Undo brings the other back.")
 }
 
 func (w *window) refreshTune() {
 	t := &w.tuning
-	if t.line == nil { // the state tells of itself before the room is built
+	if t.take == nil { // the state tells of itself before the room is built
 		return
 	}
-	w.showChoices()
-	setVisible(t.line, t.tune.Running)
-	t.line.show(t.tune.Done)
-	label := "Search"
+	w.showQuestion()
+	label := map[model.TuneTask]string{model.ShowField: "Show the field", model.TellErrors: "Try the errors out"}[t.tune.Task]
+	if label == "" {
+		label = "Search"
+	}
 	if t.tune.Running {
 		label = "Stop"
 	}
-	if t.search.Text != label {
-		t.search.SetText(label)
+	if t.begin.Text != label {
+		t.begin.SetText(label)
 	}
-	if _, ok := t.tune.Kept(); ok && !t.tune.Running {
-		t.take.Enable()
-	} else {
-		t.take.Disable()
-	}
-	switch {
-	case t.tune.Trouble != nil:
-		t.state.setText(strings.Join(model.InWords(t.tune.Trouble), "  "))
-	case t.tune.Running:
-		t.state.setText(t.tune.Phase)
-	case t.tune.Stopped:
-		t.state.setText("Stopped; the best so far is kept.")
-	case t.tune.Outcome != nil:
-		t.state.setText(fmt.Sprintf("Done: %d stones were looked at.", t.tune.Outcome.Tried))
-	default:
-		t.state.setText("Seen face-up in " + strings.ToLower(w.bench.Look.Around[0].Medium.Name) + ", the first column of Look.")
-	}
+	_, ok := t.tune.Kept()
+	enable(t.take, ok && !t.tune.Running)
+
 	show := func(o *canvas.Image, img *image.RGBA) {
 		if img == nil {
 			o.Image = nil
-		} else if o.Image != img {
+		} else {
 			o.Image = img
 		}
 		o.Refresh()
 	}
-	show(t.before, t.tune.StartPicture)
-	show(t.after, t.tune.BestPicture)
-	for k, trial := range []*tune.Trial{t.tune.Start, t.tune.Best} {
-		text := ""
-		if trial != nil && len(trial.Measures) > 0 {
-			var words []string
-			for i, aim := range t.tune.Aims {
-				if i < len(trial.Measures) {
-					words = append(words, fmt.Sprintf("%s %.4f", aim.Measure, trial.Measures[i]))
-				}
-			}
-			text = strings.Join(words, ", ")
+	pictures, charts := t.tune.StartPicture != nil, t.tune.Charted()
+	setVisible(t.pair, pictures && !charts)
+	setVisible(t.chart.scroll, charts)
+	setVisible(t.hinted, !pictures && !charts)
+	if charts {
+		t.chart.show(t.tune.Chart, t.tune.ChartShape())
+	} else {
+		show(t.before, t.tune.StartPicture)
+		show(t.after, t.tune.BestPicture)
+		for k, trial := range []*tune.Trial{t.tune.Start, t.tune.Best} {
+			t.numbers[k].setText(strings.Join(t.tune.TrialWords(trial), ", "))
 		}
-		t.numbers[k].setText(text)
 	}
-	var facts [][2]string
-	for _, c := range t.tune.Changes() {
-		name, rest, _ := strings.Cut(c, "  ")
-		facts = append(facts, [2]string{name, strings.ReplaceAll(rest, "→", "to")}) // the typeface has no arrow
+	hint := taskHint(t.tune.Task)
+	lines := t.tune.Verdict()
+	title := ""
+	switch {
+	case t.tune.Trouble != nil:
+		title, lines = "No answer", model.InWords(t.tune.Trouble)
+	case t.tune.Running:
+		title, hint = "So far", "The first look takes a moment."
+	case t.tune.Stopped:
+		title = "Stopped; the best so far is kept"
+	case len(lines) > 0:
+		title = "Found"
 	}
-	t.changes.show(facts)
-	t.verdict.setText(verdict(t.tune))
+	t.hint.setText(hint)
+	t.title.setText(title)
+	t.changes.show(t.tune.Changes())
+	if text := strings.Join(lines, "\n\n"); t.verdict.Text != text {
+		t.verdict.SetText(text)
+	}
+	w.refreshProgress()
 }
 
-// verdict says what a search that has ended is worth, in words that its numbers bear.
-func verdict(t *model.Tune) string {
-	o := t.Outcome
-	switch {
-	case o == nil:
-		return ""
-	case !o.Better:
-		return "Nothing was found that is better by more than chance explains."
+// taskHint says what a question is about, before it was asked.
+func taskHint(task model.TuneTask) string {
+	switch task {
+	case model.ShowField:
+		return "Tick two tiers. The goal is shown over both angles, coarse first: pick a place by a click and take it into the plan."
+	case model.TellErrors:
+		return "A thousand stones are cut with small errors of machine and hand. It shows what they cost in light and at the meet points, " +
+			"and which error matters most."
+	case model.TradeTwo:
+		return "Name two goals. Stones are sought of which none is better in both than another; pick the one you want."
+	case model.MoveMaterial:
+		return "Choose another material. The plan is moved there by the tangent rule, and by search, and both are set beside the original."
 	}
-	return fmt.Sprintf("Better by %.4f ± %.4f of the goal, judged on rays that the search has not seen. "+
-		"What was tried nearby tells how much a small error costs; look at it in Look before you cut.", o.Gain, o.GainError)
+	return "Tick the tiers whose angles may change, and say what the stone shall be good at. Facets keep their meet points while angles change. " +
+		"The best so far appears here beside the stone as it stands."
+}
+
+// at is what the room is at, for the header.
+func (t *tuneBench) at() runState {
+	s := runState{share: t.tune.Done, active: t.tune.Running}
+	if t.tune.Running {
+		s.words = fmt.Sprintf("%s %.0f %%", t.tune.Phase, 100*t.tune.Done)
+	}
+	return s
+}
+
+// showQuestion shows the parts of the question that the task has.
+func (w *window) showQuestion() {
+	t := &w.tuning
+	errs, move, two := t.tune.Task == model.TellErrors, t.tune.Task == model.MoveMaterial, len(t.tune.Aims) == 2
+	eye := false
+	for _, a := range t.tune.Aims {
+		eye = eye || a.Measure.ByEye()
+	}
+	changed := false
+	for _, part := range []struct {
+		o     fyne.CanvasObject
+		shown bool
+	}{
+		{t.goals, !errs}, {t.other, two && t.tune.Task != model.TradeTwo}, {t.light, eye}, {t.to, move},
+		{t.vary, !errs}, {t.limits, !errs}, {t.slips, errs}, {t.record, !errs}, {t.worst, !errs},
+	} {
+		if part.o.Visible() != part.shown {
+			setVisible(part.o, part.shown)
+			changed = true
+		}
+	}
+	w.showSeen()
+	w.showChoices()
+	if changed {
+		t.goals.Refresh()
+		t.box.Refresh()
+	}
+}
+
+// showSeen lists the surroundings.
+func (w *window) showSeen() {
+	t := &w.tuning
+	names := ""
+	for _, s := range t.tune.Seen {
+		names += s.Medium.Name + fmt.Sprint(s.Dish) + "\x00"
+	}
+	if names == t.seenIn {
+		return
+	}
+	t.seenIn, t.seen.Objects = names, nil
+	for i, s := range t.tune.Seen {
+		words := strings.ToLower(s.Medium.Name)
+		if s.Dish {
+			words = "a dish of " + words
+		}
+		check := widget.NewCheck(words, nil)
+		check.Checked = s.Chosen
+		check.OnChanged = func(on bool) { t.tune.SeeIn(i, on) }
+		t.seen.Add(check)
+	}
+	t.seen.Refresh()
 }
 
 // showChoices lists what may vary, with its limits.
@@ -225,11 +533,11 @@ func (w *window) showChoices() {
 	}
 	if shape != t.shape {
 		t.shape = shape
-		t.choices.Objects, t.fields = nil, nil
+		t.choices.Objects, t.fields, t.checks = nil, nil, nil
 		for i, c := range t.tune.Choices {
-			check := widget.NewCheck(c.Name, nil)
-			check.Checked = c.Chosen
+			check := widget.NewCheck(strings.Replace(c.Name, ".", " ", 1), nil)
 			check.OnChanged = func(on bool) { t.tune.Choose(i, on) }
+			t.checks = append(t.checks, check)
 			var pair [2]*numberField
 			for k := range pair {
 				pair[k] = newNumberField(func(s string) (float64, error) { return model.ParseNumber(strings.TrimSuffix(s, "°"), "") },
@@ -247,7 +555,7 @@ func (w *window) showChoices() {
 			}
 			t.fields = append(t.fields, pair)
 			box := func(f *numberField) fyne.CanvasObject {
-				return container.NewGridWrap(fyne.NewSize(62, f.MinSize().Height), f)
+				return container.NewGridWrap(fyne.NewSize(64, f.MinSize().Height), f)
 			}
 			limits := container.NewHBox(box(pair[0]), newWord(colourDim, theme.SizeNameText, "to"), box(pair[1]))
 			t.choices.Add(container.NewBorder(nil, nil, nil, limits, check))
@@ -255,16 +563,46 @@ func (w *window) showChoices() {
 		t.choices.Refresh()
 	}
 	for i, c := range t.tune.Choices {
+		if t.checks[i].Checked != c.Chosen {
+			t.checks[i].Checked = c.Chosen // SetChecked would answer
+			t.checks[i].Refresh()
+		}
 		t.fields[i][0].show(c.Low)
 		t.fields[i][1].show(c.High)
 	}
 }
 
-// at is what the room is at, for the header.
-func (t *tuneBench) at() runState {
-	s := runState{share: t.tune.Done, active: t.tune.Running}
-	if t.tune.Running {
-		s.words = t.tune.Phase
+// pairLayout sets two pictures beside each other, or one above the other where that makes
+// them larger.
+type pairLayout struct{}
+
+// MinSize is what two small pictures need.
+func (*pairLayout) MinSize([]fyne.CanvasObject) fyne.Size { return fyne.NewSize(320, 200) }
+
+// Layout decides by the shape of the room.
+func (*pairLayout) Layout(objects []fyne.CanvasObject, size fyne.Size) {
+	const air, words = 16, 80 // words over and under a picture
+	if min((size.Width-air)/2, size.Height-words) >= min(size.Width, (size.Height-air)/2-words) {
+		wide := (size.Width - air) / 2
+		high := min(size.Height, wide+words)
+		place(objects[0], 0, 0, wide, high)
+		place(objects[1], wide+air, 0, wide, high)
+		return
 	}
-	return s
+	high := (size.Height - air) / 2
+	place(objects[0], 0, 0, size.Width, high)
+	place(objects[1], 0, high+air, size.Width, high)
+}
+
+// linesLayout gives a text the full width and the height of so many lines.
+type linesLayout struct{ lines float32 }
+
+// MinSize is the height of the lines.
+func (l *linesLayout) MinSize([]fyne.CanvasObject) fyne.Size {
+	return fyne.NewSize(20, l.lines*lineHeight())
+}
+
+// Layout gives it all there is.
+func (l *linesLayout) Layout(objects []fyne.CanvasObject, size fyne.Size) {
+	place(objects[0], 0, 0, size.Width, size.Height)
 }

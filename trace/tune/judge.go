@@ -332,7 +332,7 @@ func (j *judge) look(ctx context.Context, stone *facets.Stone, carats float64, e
 	if e.err > 0 {
 		workers = j.workers() // such a long look is for one stone
 	}
-	if slices.ContainsFunc(wanted, func(m Measure) bool { return !m.byEye() }) {
+	if slices.ContainsFunc(wanted, func(m Measure) bool { return !m.ByEye() }) {
 		for _, cases := range j.alike(func(a, b *Case) bool { return a.View == b.View }) {
 			const pixels = 16 // the map itself is not wanted
 			scene := j.scene(stone, cases)
@@ -356,7 +356,7 @@ func (j *judge) look(ctx context.Context, stone *facets.Stone, carats float64, e
 			}
 		}
 	}
-	if slices.ContainsFunc(wanted, Measure.byEye) {
+	if slices.ContainsFunc(wanted, Measure.ByEye) {
 		distance := j.Distance
 		if distance == 0 {
 			distance = UsualDistance

@@ -35,18 +35,19 @@ const (
 var measureWords = [...]struct {
 	word   string
 	better float64 // 1 or -1
+	name   string
 }{
-	LightReturn:  {"return", 1},
-	Leakage:      {"leakage", -1},
-	HeadShade:    {"head", -1},
-	LeakyArea:    {"leaky", -1},
-	WindowedArea: {"windowed", -1},
-	Weight:       {"weight", 1},
-	Luminance:    {"luminance", 1},
-	DarkArea:     {"dark", -1},
-	Contrast:     {"contrast", 1},
-	Fire:         {"fire", 1},
-	Sparkle:      {"sparkle", 1},
+	LightReturn:  {"return", 1, "light return"},
+	Leakage:      {"leakage", -1, "leakage"},
+	HeadShade:    {"head", -1, "darkened by the head"},
+	LeakyArea:    {"leaky", -1, "leaky area"},
+	WindowedArea: {"windowed", -1, "windowed area"},
+	Weight:       {"weight", 1, "weight"},
+	Luminance:    {"luminance", 1, "luminance"},
+	DarkArea:     {"dark", -1, "dark area"},
+	Contrast:     {"contrast", 1, "contrast"},
+	Fire:         {"fire", 1, "fire"},
+	Sparkle:      {"sparkle", 1, "sparkle"},
 }
 
 // Measures returns all measures.
@@ -61,9 +62,12 @@ func Measures() []Measure {
 // String returns the measure's word on the command line.
 func (m Measure) String() string { return measureWords[m].word }
 
-// byEye reports whether the measure is taken from pictures as an eye sees them, not from
+// Name returns what people call the measure.
+func (m Measure) Name() string { return measureWords[m].name }
+
+// ByEye reports whether the measure is taken from pictures as an eye sees them, not from
 // the ledger.
-func (m Measure) byEye() bool { return m >= Luminance }
+func (m Measure) ByEye() bool { return m >= Luminance }
 
 // Better returns 1 where more of the measure is better, and -1 where less is.
 func (m Measure) Better() float64 { return measureWords[m].better }

@@ -1,0 +1,269 @@
+package model
+
+import (
+	"fmt"
+	"math"
+	"strconv"
+	"strings"
+
+	"pavilight/facets"
+	"pavilight/trace/tune"
+)
+
+// Shown returns the stone that the answer is about: what was picked by hand, else the best
+// so far; nil before there is one.
+func (t *Tune) Shown() *tune.Trial {
+	if t.Pick != nil {
+		return t.Pick
+	}
+	return t.Best
+}
+
+// Kept returns the plan as the answer has it, false before there is one that fits, or when
+// the plan was changed since the question was asked.
+func (t *Tune) Kept() (*facets.Plan, bool) {
+	if t.planUsed == nil || t.plan != t.planUsed {
+		return nil, false
+	}
+	if t.Moved != nil {
+		if t.Moved.FoundPlan == nil || !t.Moved.Found.Fit {
+			return nil, false
+		}
+		plan := t.Moved.FoundPlan.Clone()
+		plan.Material = facets.MaterialRef{Key: t.Moved.To.Key}
+		return plan, true
+	}
+	shown := t.Shown()
+	if shown == nil || !shown.Fit {
+		return nil, false
+	}
+	return t.planOf(shown), true
+}
+
+func (t *Tune) planOf(trial *tune.Trial) *facets.Plan {
+	names := make([]string, len(t.variablesUsed))
+	for i, v := range t.variablesUsed {
+		names[i] = v.Name
+	}
+	values := make([]float64, len(trial.Values))
+	for i, x := range trial.Values {
+		values[i] = onStep(t.variablesUsed[i], x)
+	}
+	return tune.PlanPattern{Plan: t.planUsed}.With(names, values)
+}
+
+// onStep returns a value as the machine can set it: the cells of a field lie between.
+func onStep(v tune.Variable, x float64) float64 {
+	if v.Step <= 0 {
+		return x
+	}
+	return math.Round(math.Round(x/v.Step)*v.Step*1e9) / 1e9
+}
+
+// valueWords writes a value of a variable.
+func valueWords(v tune.Variable, x float64) string {
+	if v.Unit == "degrees" {
+		return strconv.FormatFloat(x, 'f', 2, 64) + "°"
+	}
+	return strconv.FormatFloat(x, 'f', 3, 64)
+}
+
+// changeWords writes a change of a variable in a cutter's terms.
+func changeWords(v tune.Variable, by float64) string {
+	switch {
+	case math.Abs(by) < 5e-4:
+		return "as it is"
+	case v.Unit == "degrees" && by > 0:
+		return valueWords(v, by) + " steeper"
+	case v.Unit == "degrees":
+		return valueWords(v, -by) + " flatter"
+	}
+	return fmt.Sprintf("%+.3f", by)
+}
+
+// Changes tells a cutter what the answer changes: a name and what becomes of it.
+func (t *Tune) Changes() [][2]string {
+	shown := t.Shown()
+	if t.Moved != nil && len(t.Moved.Found.Values) > 0 {
+		return t.changes(t.Moved.Variables, t.Moved.Found.Values)
+	}
+	if shown == nil || len(shown.Values) != len(t.variablesUsed) {
+		return nil
+	}
+	return t.changes(t.variablesUsed, shown.Values)
+}
+
+func (t *Tune) changes(vs []tune.Variable, values []float64) (lines [][2]string) {
+	for i, v := range vs {
+		if i < len(values) {
+			x := onStep(v, values[i])
+			lines = append(lines, [2]string{v.Name,
+				fmt.Sprintf("%s to %s, %s", valueWords(v, v.Now), valueWords(v, x), changeWords(v, x-v.Now))})
+		}
+	}
+	return lines
+}
+
+// withError writes a number with its standard error; it shows no digits that the error
+// makes worthless.
+func withError(v, e float64) string {
+	decimals := 4
+	if e > 0 {
+		decimals = max(1, min(5, 1-int(math.Floor(math.Log10(e)))))
+	}
+	return fmt.Sprintf("%.*f ± %.*f", decimals, v, decimals, e)
+}
+
+// TrialWords tells what a stone measures, a line an aim; empty where it was not seen.
+func (t *Tune) TrialWords(trial *tune.Trial) []string {
+	if trial == nil {
+		return nil
+	}
+	if !trial.Seen {
+		return trial.Words
+	}
+	var lines []string
+	for i, a := range t.aimsUsed {
+		if i < len(trial.Measures) {
+			line := a.Measure.Name() + " " + withError(trial.Measures[i], trial.MeasureErrors[i])
+			if a.Measure == tune.Weight {
+				line += " ct"
+			}
+			lines = append(lines, line)
+		}
+	}
+	return lines
+}
+
+// nearLoss is the loss by a small error that is worth a warning, as a share of the score.
+const nearLoss = 0.02
+
+// Verdict says what the answer is worth, in words that its numbers bear, a paragraph each;
+// empty before there is one.
+func (t *Tune) Verdict() []string {
+	switch {
+	case t.Moved != nil:
+		return t.movedWords()
+	case t.Tolerance != nil:
+		return t.toleranceWords()
+	case t.Front != nil && len(t.Front.Points) > 0:
+		lines := []string{fmt.Sprintf("%d stones of which none is better in both than another. Click one, or use the arrow keys.", len(t.Front.Points))}
+		if t.Pick != nil {
+			lines = append(lines, "Picked: "+strings.Join(t.TrialWords(t.Pick), ", ")+".")
+		}
+		return lines
+	case t.Field != nil:
+		return t.fieldWords()
+	case t.Outcome != nil:
+		return t.outcomeWords(t.Outcome, t.variablesUsed)
+	}
+	return nil
+}
+
+func (t *Tune) outcomeWords(o *tune.Outcome, vs []tune.Variable) (lines []string) {
+	switch {
+	case !o.Best.Fit:
+		lines = append(lines, "No stone that keeps the limits was found.")
+	case !o.Start.Seen:
+		lines = append(lines, "As it stands there is no such stone: "+strings.Join(o.Start.Words, "; ")+".")
+	case !o.Start.Fit:
+		lines = append(lines, "As it stands the stone breaks limits: "+strings.Join(o.Start.Words, "; ")+".")
+	case o.Better:
+		lines = append(lines, fmt.Sprintf("Better by %s of the goal: more than chance explains.", withError(o.Gain, o.GainError)))
+	case t.Stopped:
+		lines = append(lines, "Stopped before the best was traced anew: how much better it is stays open.")
+	default:
+		lines = append(lines, "Nothing better was found than the stone as it stands, beyond what chance explains.")
+	}
+	for i, v := range vs {
+		if x := o.Best.Values[i]; v.High > v.Low && (x < v.Low+v.Step*0.999 || x > v.High-v.Step*0.999) {
+			lines = append(lines, fmt.Sprintf("%s stands at its limit: wider ones may do better.", v.Name))
+		}
+	}
+	for i, near := range o.Nearby {
+		v := vs[i/2]
+		by := changeWords(v, near.Values[i/2]-o.Best.Values[i/2])
+		switch loss := o.Best.Score - near.Score; {
+		case !near.Seen:
+			lines = append(lines, fmt.Sprintf("Careful: with %s %s there is no such stone.", v.Name, by))
+		case loss > nearLoss*math.Abs(o.Best.Score):
+			lines = append(lines, fmt.Sprintf("Careful: with %s %s it loses %.3f. The best stands at an edge; rocking the stone, too, may find a calmer place.", v.Name, by, loss))
+		}
+	}
+	return append(lines, fmt.Sprintf("%d stones were looked at. Both shown are traced anew, with rays that the search has not seen.", o.Tried))
+}
+
+func (t *Tune) fieldWords() (lines []string) {
+	if t.Pick != nil {
+		if !t.Pick.Fit {
+			return []string{"There is no stone that fits here: " + strings.Join(t.Pick.Words, "; ") + "."}
+		}
+		lines = append(lines, "Picked: "+strings.Join(t.TrialWords(t.Pick), ", ")+".")
+	} else if best, ok := t.Field.Best(); ok {
+		lines = append(lines, "Best of the field: "+strings.Join(t.TrialWords(&t.Field.Trials[best]), ", ")+".")
+	}
+	if t.Field.Now.Seen {
+		lines = append(lines, "As it stands: "+strings.Join(t.TrialWords(&t.Field.Now), ", ")+".")
+	}
+	return append(lines, "Click a place, or move with the arrow keys, to pick it.")
+}
+
+func (t *Tune) toleranceWords() []string {
+	o := t.Tolerance
+	lines := []string{
+		fmt.Sprintf("%d stones were cut with errors (%s).", len(o.Draws), tune.UsualMachineSource),
+		fmt.Sprintf("Light return %.4f without errors; with them %.4f on average, and 90 stones of 100 between %.4f and %.4f.",
+			o.Return.Plan, o.Return.Mean, o.Return.Low, o.Return.High),
+		fmt.Sprintf("Corners that should meet miss by up to %.3f mm in half of the stones, by up to %.3f mm in 95 of 100.",
+			o.GapMM.Median, o.GapMM.High),
+	}
+	for i, c := range o.Causes {
+		const most = 3
+		if i == most || c.Share < 0.01 {
+			break
+		}
+		what := c.What
+		if c.Tier != "" {
+			what += " of " + c.Tier
+		}
+		lines = append(lines, fmt.Sprintf("%s makes %.0f %% of the differences in light return.", strings.ToUpper(what[:1])+what[1:], 100*c.Share))
+	}
+	switch {
+	case !o.Complete:
+		lines = append(lines, "Stopped before the end.")
+	case o.Needed == 0:
+		lines = append(lines, fmt.Sprintf("Errors of no size keep 95 stones of 100 within %.3f of the light return.", o.Loss))
+	default:
+		lines = append(lines, fmt.Sprintf("With all errors %.2g times as large, 95 stones of 100 lose no more than %.3f: angles to %.2f°.",
+			o.Needed, o.Loss, o.Precise.Angle.Degrees()))
+	}
+	return lines
+}
+
+func (t *Tune) movedWords() (lines []string) {
+	m := t.Moved
+	name := m.To.Name
+	for i, a := range []struct {
+		how   string
+		trial *tune.Trial
+	}{
+		{"As it stands, in " + m.From.Name, &m.Original}, {"Unchanged, in " + name, &m.Unchanged},
+		{"By the tangent rule, in " + name, &m.Tangent}, {"By search, in " + name, &m.Found},
+	} {
+		words := t.TrialWords(a.trial)
+		if len(words) == 0 {
+			continue
+		}
+		line := a.how + ": " + strings.Join(words, ", ") + "."
+		for k, u := range m.Passed[i] {
+			const most = 2
+			if k == most {
+				line += " And more lie under critical angles."
+				break
+			}
+			line += " Careful: " + u.String() + "."
+		}
+		lines = append(lines, line)
+	}
+	return lines
+}
