@@ -58,3 +58,15 @@ func TestRowsShowPathLengthAndColour(t *testing.T) {
 		t.Errorf("the strip shows %q", r.bench.Look.StripMeaning())
 	}
 }
+
+func TestSamplesAreOpenedByOutline(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	for _, g := range r.sampleItems() {
+		if g.Label == "Triangle" {
+			choose(t, g.ChildMenu.Items, "Trillion")
+		}
+	}
+	if got := r.bench.Doc.Plan().File; got != "trillion.toml" {
+		t.Errorf("on the bench lies %q", got)
+	}
+}

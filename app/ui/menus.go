@@ -9,6 +9,7 @@ import (
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/driver/desktop"
 
+	"pavilight/app/model"
 	"pavilight/testdata"
 )
 
@@ -96,20 +97,24 @@ func (w *window) buildMenu() *fyne.MainMenu {
 	return m.main
 }
 
-// sampleItems lists the bundled plans by their file names.
+// sampleItems lists the bundled plans, a menu for each kind of outline.
 func (w *window) sampleItems() []*fyne.MenuItem {
-	names, err := fs.Glob(testdata.Plans(), "*.toml")
+	files, err := fs.Glob(testdata.Plans(), "*.toml")
 	if err != nil {
 		return nil // the pattern is sound
 	}
-	var items []*fyne.MenuItem
-	for _, name := range names {
-		label := strings.ReplaceAll(strings.TrimSuffix(name, ".toml"), "-", " ")
-		items = append(items, fyne.NewMenuItem(strings.ToUpper(label[:1])+label[1:], func() {
-			w.unlessUnsaved("open another plan", func() { w.openSample(name) })
-		}))
+	var groups []*fyne.MenuItem
+	for _, g := range model.SampleGroups(files) {
+		group := fyne.NewMenuItem(g.Outline, nil)
+		group.ChildMenu = fyne.NewMenu("")
+		for _, s := range g.Samples {
+			group.ChildMenu.Items = append(group.ChildMenu.Items, fyne.NewMenuItem(s.Label, func() {
+				w.unlessUnsaved("open another plan", func() { w.openSample(s.File) })
+			}))
+		}
+		groups = append(groups, group)
 	}
-	return items
+	return groups
 }
 
 // refreshMenu writes what has changed; a menu is costly to refresh, so it is left
