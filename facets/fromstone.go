@@ -7,9 +7,10 @@ import (
 	"slices"
 )
 
-// Facets of a stone are cut as one tier if their angles and distances agree this
-// well: rounding alone, as a share of a radian and of the stone's size.
-const oneTier = 1e-9
+// Facets of a stone are cut as one tier if their angles and distances agree this well,
+// as a share of a radian and of the stone's size: the rounding of a file in single
+// precision over a small facet, which is far less than any machine can set.
+const oneTier = 1e-5
 
 // PlanOf returns a plan that cuts the stone as it is: its facets gathered into tiers
 // of one angle and one distance, girdle first, then pavilion and crown from steep to

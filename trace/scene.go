@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math"
 	"slices"
+	"strings"
 
 	"github.com/go-gl/mathgl/mgl64"
 
@@ -180,7 +181,7 @@ func (s Scene) checkAxis() error {
 func (s Scene) tiersExist(what string, tiers []string) error {
 	for _, name := range tiers {
 		if !slices.ContainsFunc(s.Stone.Facets, func(f facets.Facet) bool { return f.Tier == name }) {
-			return fmt.Errorf("%s on tier %q: the stone has no facet of that tier", what, name)
+			return fmt.Errorf("%s on tier %q: the stone has no facet of that tier; its tiers are %s", what, name, strings.Join(s.tiers(), ", "))
 		}
 	}
 	return nil
@@ -191,6 +192,16 @@ type InvalidError struct{ Err error }
 
 func (e *InvalidError) Error() string { return e.Err.Error() }
 func (e *InvalidError) Unwrap() error { return e.Err }
+
+// tiers returns the names of the stone's tiers in the order of its facets.
+func (s Scene) tiers() (names []string) {
+	for _, f := range s.Stone.Facets {
+		if !slices.Contains(names, f.Tier) {
+			names = append(names, f.Tier)
+		}
+	}
+	return names
+}
 
 // known fails where the stone or a medium has no index at w.
 func (s Scene) known(w gems.Wavelength) error {
