@@ -78,7 +78,7 @@ func TestGreyIsGreyAtEveryPixel(t *testing.T) {
 			t.Fatal(err)
 		}
 		scene := trace.Scene{Stone: bundled(t), Material: clear, Surroundings: trace.Around(clear), Ground: &trace.Ground{Reflectance: 0.5}}
-		still, err := Look(context.Background(), scene, trace.Settings{Light: even.Under(s), Pixels: 120, Samples: 1, Seed: 3}, nil)
+		still, err := Look(context.Background(), scene, trace.Settings{Light: even.Under(s), Pixels: 380, Samples: 1, Seed: 3}, nil)
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -95,7 +95,7 @@ func TestGreyIsGreyAtEveryPixel(t *testing.T) {
 				}
 			}
 		}
-		if inside < 8000 {
+		if inside < 80000 {
 			t.Fatalf("%s: %d pixels show the stone", spectrum, inside)
 		}
 	}
