@@ -119,8 +119,8 @@ func (c *composer) sideBySide(all []*Findings, names []string) {
 		parts = append(parts, text{words: words, bold: i == 0 && len(said) > 1})
 	}
 	c.add(together{append(parts, plates{items: items, edge: edge})})
-	var rows []bar
 	for k := range all[0].Columns {
+		var rows []bar
 		for i, f := range all {
 			col := &f.Columns[k]
 			one := bar{
@@ -132,8 +132,13 @@ func (c *composer) sideBySide(all []*Findings, names []string) {
 			}
 			rows = append(rows, one)
 		}
+		title := ""
+		if k == 0 {
+			title = c.say("bar.title")
+		}
+		c.add(bars(c.words, title, rows))
 	}
-	c.add(bars(c.words, c.say("bar.title"), rows), text{words: c.say("bar.note", "errors", c.errorKind(all[0])), small: true})
+	c.add(text{words: c.say("bar.note", "errors", c.errorKind(all[0])), small: true})
 }
 
 // kinds returns the names of the materials of stones, each once.
@@ -230,7 +235,7 @@ func (c *composer) comparedMaps(all []*Findings, names []string) {
 func (c *composer) comparedTilts(all []*Findings, names []string) {
 	const height, gap = 30.0, 8.0
 	first := &all[0].Tilts[0].Columns[0]
-	p := &drawing.Page{Width: contentWidth, Height: height + chartHeight()}
+	p := &drawing.Page{Width: contentWidth, Height: height + chartHeight(len(all))}
 	wide := (contentWidth - gap) / 2
 	worst := 0.0
 	for n, q := range []trace.Quantity{trace.Returned, trace.Leaked} {

@@ -288,13 +288,28 @@ func (c *composer) rays(f *Findings) {
 	for i, k := range columns {
 		titles[i] = upper(c.inside(&f.Around.Columns[k]))
 	}
-	parts := []part{heading{words: c.say("ray")}, text{words: c.say("ray.intro") + " " + c.say("ray.angles")}, rayFigure(c.words, f, titles)}
+	parts := []part{heading{words: c.say("ray")}, text{words: c.say("ray.intro") + " " + c.say("ray.angles")}, rayFigure(c.words, f, titles, c.rayHeight())}
 	steps := columnsOf{c.steps(f, f.Ray.Paths[0])}
 	if columns[0] != columns[1] {
 		steps = append(steps, c.steps(f, f.Ray.Paths[1]))
 	}
+	if c.shortPaper() { // the drawing at least stays on the first page
+		c.add(together{parts}, steps)
+		return
+	}
 	c.add(together{append(parts, steps)})
 }
+
+// rayHeight is the height of the drawing of a ray, mm: less on short paper, so that it stays
+// on the first page.
+func (c *composer) rayHeight() float64 {
+	if c.shortPaper() {
+		return 37
+	}
+	return 46
+}
+
+func (c *composer) shortPaper() bool { return c.cover.Paper.Height < 290 }
 
 // steps tells a path as far as it is drawn.
 func (c *composer) steps(f *Findings, p *trace.Path) []string {
@@ -354,7 +369,7 @@ func (c *composer) tilts(f *Findings) {
 		}
 	}
 	const height, gap = 26.0, 8.0
-	p := &drawing.Page{Width: contentWidth, Height: height + chartHeight()}
+	p := &drawing.Page{Width: contentWidth, Height: height + chartHeight(len(f.Job.Media))}
 	wide := (contentWidth - gap) / 2
 	for i, key := range []string{"tilt.return", "tilt.leak"} {
 		chart(p, c.words, c.say(key)+", "+c.say("parts"), f.Tilts, curves[i], pt(float64(i)*(wide+gap), 0), wide, height)
@@ -535,7 +550,7 @@ func (c *composer) measures(f *Findings) {
 		lines = append(lines, c.say("measure.notes", "notes", strings.Join(f.Solid.Notes, " ")))
 	}
 	parts = append(parts, text{words: strings.Join(lines, " "), small: true})
-	c.add(together{parts})
+	c.add(parts...)
 }
 
 // valueWords writes one value of a stone's proportions.
@@ -584,7 +599,7 @@ func (c *composer) method(all []*Findings) {
 	if c.cover.Colleague {
 		words += " " + c.say("method.picture", "lights", strings.Join(lights, "; "))
 	}
-	c.add(together{[]part{heading{words: c.say("method")}, text{words: words}}})
+	c.add(heading{words: c.say("method")}, text{words: words})
 	materials := []part{heading{words: c.say("material")}}
 	seen := map[*gems.Material]bool{}
 	for _, f := range all {
@@ -594,8 +609,8 @@ func (c *composer) method(all []*Findings) {
 		seen[f.Material] = true
 		materials = append(materials, text{words: c.materialWords(f)})
 	}
-	c.add(together{materials})
-	c.add(together{[]part{heading{words: c.say("says")}, text{words: c.say("says.grade") + " " + c.say("says.model") + " " + c.say("says.view")}}})
+	c.add(materials...)
+	c.add(heading{words: c.say("says")}, text{words: c.say("says.grade") + " " + c.say("says.model") + " " + c.say("says.view")})
 }
 
 func (c *composer) materialWords(f *Findings) string {

@@ -90,7 +90,7 @@ type bar struct {
 	group  string // a heading over this bar; empty for none
 }
 
-// bars draws ledgers as bars of 100 parts with a key of their colours above.
+// bars draws ledgers as bars of 100 parts. A title brings a key of the colours with it.
 func bars(w words, title string, rows []bar) figure {
 	const barHeight, gap, nameWidth = 5.6, 1.6, 36.0
 	endWidth := 0.0
@@ -100,18 +100,24 @@ func bars(w words, title string, rows []bar) figure {
 		}
 	}
 	p := &drawing.Page{Width: contentWidth}
-	y := body().Height() + 0.6
-	p.Write(strong(), black(), drawing.Left, pt(0, y), title)
-	// The key: only what some bar shows.
-	y += 3.0
-	x := 0.0
-	for _, q := range shown() {
-		most := 0
-		for _, r := range rows {
-			most = max(most, wholeParts(r.ledger)[q])
-		}
-		if most == 0 {
-			continue
+	y, x := 0.0, 0.0
+	key := shown()
+	if title == "" {
+		key = nil
+	} else {
+		y = body().Height() + 0.6
+		p.Write(strong(), black(), drawing.Left, pt(0, y), title)
+		y += 3.0
+	}
+	for _, q := range key {
+		if q == trace.Absorbed || q == trace.Unresolved { // only where some bar shows it
+			most := 0
+			for _, r := range rows {
+				most = max(most, wholeParts(r.ledger)[q])
+			}
+			if most == 0 {
+				continue
+			}
 		}
 		name := w.say(q.String())
 		width := 4.4 + small().Width(name) + 4
@@ -122,9 +128,11 @@ func bars(w words, title string, rows []bar) figure {
 		p.Write(small(), black(), drawing.Left, pt(x+4.4, y+2.7), name)
 		x += width
 	}
-	y += 5.4
+	if title != "" {
+		y += 5.4
+	}
 	long := contentWidth - nameWidth - endWidth
-	if endWidth > 0 {
+	if endWidth > 0 && title != "" {
 		p.Write(small(), pale(), drawing.Right, pt(contentWidth, y-2.7), w.say("bar.back"))
 	}
 	for i, r := range rows {
@@ -322,21 +330,29 @@ func chart(p *drawing.Page, w words, title string, tilts []Tilt, curves []curve,
 		}
 		p.Line(mediumInk(k), points...)
 	}
-	// The key stands under the axis.
-	x := left
+	// The key stands under the axis, in as many lines as it needs.
+	x, y := left, top+height+7.6
 	for k, c := range curves {
-		y := top + height + 7.6
+		name := small().Cut(c.name, wide-8)
+		if x > left && x+8+small().Width(name) > left+wide {
+			x, y = left, y+keyLine
+		}
 		p.Line(mediumInk(k), pt(x, y-1), pt(x+7, y-1))
-		x += 8 + p.Write(small(), black(), drawing.Left, pt(x+8, y), c.name) + 4
+		x += 8 + p.Write(small(), black(), drawing.Left, pt(x+8, y), name) + 4
 	}
 }
 
-// chartHeight is what a chart takes beyond its frame.
-func chartHeight() float64 { return body().Height() + 2.5 + 9 }
+// keyLine is the height of a line of a chart's key, mm.
+const keyLine = 3.8
+
+// chartHeight is what a chart of some curves takes beyond its frame, at most.
+func chartHeight(curves int) float64 {
+	return body().Height() + 2.5 + 9 + keyLine*float64((curves+1)/2-1)
+}
 
 // rayFigure draws a ray in two side views next to each other.
-func rayFigure(w words, f *Findings, titles [2]string) figure {
-	const gap, height, head = 8.0, 46.0, 5.0
+func rayFigure(w words, f *Findings, titles [2]string, height float64) figure {
+	const gap, head = 8.0, 5.0
 	two := 2
 	if f.Ray.First == f.Ray.Second {
 		two = 1

@@ -37,8 +37,8 @@ type setter struct {
 
 // The white above and below the type area, mm.
 const (
-	topMargin    = 14.0
-	bottomMargin = 18.0
+	topMargin    = 12.0
+	bottomMargin = 15.0
 )
 
 // pages sets the whole document.
@@ -118,7 +118,7 @@ func (s *setter) height(parts []part) float64 {
 }
 
 // headRoom is what must be free below a heading.
-const headRoom = 25
+const headRoom = 20
 
 func (s *setter) set(p part) {
 	switch p := p.(type) {
@@ -247,6 +247,15 @@ func (s *setter) beside(b beside) {
 func (s *setter) columns(c columnsOf) {
 	const gap = 8.0
 	wide := (contentWidth - gap) / 2
+	needed := 0.0
+	for _, column := range c {
+		height := 0.0
+		for _, words := range column {
+			height += float64(len(body().Wrap(words, wide)))*body().Leading() + 0.8
+		}
+		needed = max(needed, height)
+	}
+	s.need(needed)
 	tallest := 0.0
 	for i, column := range c {
 		y := s.y
@@ -338,7 +347,7 @@ func (s *setter) list(l list) {
 func (s *setter) foot() {
 	d := s.doc
 	for i, p := range s.pages {
-		y := d.cover.Paper.Height - 10
+		y := d.cover.Paper.Height - 9
 		of := d.words.say("page", "page", strconv.Itoa(i+1), "pages", strconv.Itoa(len(s.pages)))
 		p.Write(small(), pale(), drawing.Right, pt(s.left+contentWidth, y), of)
 		words := joined(", ", d.fileTitle(), d.words.date(d.cover.Date))
