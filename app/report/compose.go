@@ -609,8 +609,8 @@ func (c *composer) method(all []*Findings) {
 		seen[f.Material] = true
 		materials = append(materials, text{words: c.materialWords(f)})
 	}
-	c.add(materials...)
-	c.add(heading{words: c.say("says")}, text{words: c.say("says.grade") + " " + c.say("says.model") + " " + c.say("says.view")})
+	c.add(together{materials})
+	c.add(together{[]part{heading{words: c.say("says")}, text{words: c.say("says.grade") + " " + c.say("says.model") + " " + c.say("says.view")}}})
 }
 
 func (c *composer) materialWords(f *Findings) string {
