@@ -58,7 +58,8 @@ type Look struct {
 	onChange func(Change)
 	trace    tracing
 	settings trace.Settings
-	light    string // that colour is seen under
+	light    string       // that colour is seen under
+	reach    facets.Angle // of the strip
 	maps     [shownCount]*picture.ColourMap
 
 	latest  request // what should be shown
@@ -117,8 +118,9 @@ type request struct {
 	settings trace.Settings
 	around   []Around
 	extras   extras
-	strip    *Strip // the last that is complete, which need not be traced again; may be nil
-	lastGood bool   // not the latest plan, which cannot be had, but the stone before it
+	reach    facets.Angle // of the strip
+	strip    *Strip       // the last that is complete, which need not be traced again; may be nil
+	lastGood bool         // not the latest plan, which cannot be had, but the stone before it
 }
 
 // run is one run under way. Its fields belong to the window's goroutine, but for
@@ -145,6 +147,7 @@ func NewLook(do func(func()), onChange func(Change)) (*Look, error) {
 	l := &Look{
 		Row:      [Rows]Shown{Shown(trace.Returned), Shown(trace.Leaked)},
 		light:    "room",
+		reach:    StripRange,
 		do:       do,
 		onChange: onChange,
 		trace:    trace.Run,
@@ -180,7 +183,7 @@ func colourMap(s Shown) *picture.ColourMap {
 // Show asks for the maps of another stone. solve is called once or more often, on
 // another goroutine.
 func (l *Look) Show(solve func() (Subject, error)) {
-	l.latest = request{solve: solve, settings: l.settings, around: l.Around, extras: extrasFor(l.Row, l.light)}
+	l.latest = request{solve: solve, settings: l.settings, around: l.Around, extras: extrasFor(l.Row, l.light), reach: l.reach}
 	l.restart()
 }
 
@@ -330,7 +333,7 @@ func (l *Look) trail(ctx context.Context, r *run, row [Rows]Shown) error {
 			return err
 		}
 	}
-	strip := newStrip(subject, r.request.settings, r.request.around, StripRange)
+	strip := newStrip(subject, r.request.settings, r.request.around, r.request.reach)
 	if strip.like(r.request.strip) {
 		return nil
 	}

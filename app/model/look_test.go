@@ -3,6 +3,7 @@ package model
 import (
 	"context"
 	"errors"
+	"math"
 	"sync"
 	"testing"
 	"testing/synctest"
@@ -389,6 +390,19 @@ func TestStripFollowsTheMaps(t *testing.T) {
 		s.report(t, 1)
 		if len(s.engine.strips) != 2*stripStops {
 			t.Error("the strip was not traced again for another direction of rocking")
+		}
+		if err := s.SetStripRange(45 * facets.Degree); err != nil {
+			t.Fatal(err)
+		}
+		s.window.settle()
+		s.report(t, 1)
+		if len(s.engine.strips) != 3*stripStops || s.Strip.Tilts[0] != -45*facets.Degree || s.engine.strips[2*stripStops].Turn != facets.Degree {
+			t.Errorf("the strip of another range: %d stops traced, from %v", len(s.engine.strips), s.Strip.Tilts[0])
+		}
+		for _, bad := range []float64{0, -5, 81, math.NaN()} {
+			if err := s.SetStripRange(facets.Angle(bad) * facets.Degree); err == nil || s.StripRange() != 45*facets.Degree {
+				t.Errorf("a range of %v° is taken", bad)
+			}
 		}
 	})
 }

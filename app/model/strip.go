@@ -2,6 +2,7 @@ package model
 
 import (
 	"context"
+	"fmt"
 	"image"
 	"math"
 	"slices"
@@ -23,8 +24,30 @@ type Strip struct {
 	settings trace.Settings
 }
 
-// StripRange is how far the strip rocks to either side.
+// StripRange is how far the strip rocks to either side unless the user sets another
+// range. It rocks along the view's turn.
 const StripRange = 20 * facets.Degree
+
+// How far the user may let the strip rock.
+const (
+	leastStripRange = 0.5 // degrees
+	mostStripRange  = 80
+)
+
+// StripRange returns how far the strip rocks to either side.
+func (l *Look) StripRange() facets.Angle { return l.reach }
+
+// SetStripRange lets the strip rock as far to either side, and traces it anew.
+func (l *Look) SetStripRange(reach facets.Angle) error {
+	if deg := reach.Degrees(); !(deg >= leastStripRange && deg <= mostStripRange) {
+		return fmt.Errorf("the strip rocks from %v° to %v° to either side", leastStripRange, mostStripRange)
+	}
+	if reach != l.reach {
+		l.reach, l.latest.reach = reach, reach
+		l.restart()
+	}
+	return nil
+}
 
 // Stops of the strip.
 const (

@@ -3,6 +3,7 @@ package ui
 import (
 	"image"
 	"image/color"
+	"strconv"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/container"
@@ -32,9 +33,10 @@ type grid struct {
 	scales   [model.Rows]*scaleBar
 	bars     [columns]*shareBar
 	ledger   ledger
-	strip    *tiltStrip // below the ledger, where there is room
-	rocking  *line      // its name
-	rocked   *wrapped   // what it shows
+	strip    *tiltStrip   // below the ledger, where there is room
+	rocking  *line        // its name
+	reach    *numberField // how far it rocks to either side
+	rocked   *wrapped     // what it shows
 
 	large    *[2]int // row and column of the map that fills the pane; nil for all six
 	pixels   int     // of a map's edge on the screen, as last asked for
@@ -75,9 +77,12 @@ func newGrid(bench *model.Bench, stray func(*fyne.KeyEvent)) *grid {
 	g.strip = newTiltStrip(bench.Look, func(stop int) { g.onTilt(bench.Look.Strip.Tilts[stop]) })
 	g.strip.stray = stray
 	g.rocking = newLine(theme.ColorNameForeground, theme.SizeNameText).bold()
-	g.rocking.setText("Rocked")
+	g.rocking.setText("Rocked ±")
+	g.reach = newNumberField(readDegrees, func(v float64) string { return strconv.FormatFloat(v, 'f', -1, 64) }, 1)
+	g.reach.commit = func(v float64) error { return bench.Look.SetStripRange(facets.Angle(v) * facets.Degree) }
+	g.reach.show(bench.Look.StripRange().Degrees())
 	g.rocked = newWrapped(colourDim, theme.SizeNameCaptionText)
-	g.add(g.strip, g.rocking, g.rocked)
+	g.add(g.strip, g.rocking, g.reach, g.rocked)
 	g.box.Layout = g
 	g.refreshAll()
 	return g
@@ -131,7 +136,7 @@ func (g *grid) layoutLarge(size fyne.Size) {
 	place(g.meaning[i], left, head+row.Height+2, gutter-12, edge-row.Height-2)
 	place(g.maps[i][j], x, head, edge, edge)
 	place(g.scales[i], x+edge+10, head, scaleWide, edge)
-	for _, o := range []fyne.CanvasObject{g.strip, g.rocking, g.rocked} {
+	for _, o := range []fyne.CanvasObject{g.strip, g.rocking, g.reach, g.rocked} {
 		setVisible(o, false)
 	}
 	g.tellPixels(edge)
@@ -333,6 +338,7 @@ func (g *grid) Layout(_ []fyne.CanvasObject, size fyne.Size) {
 	setVisible(g.strip, strip > 0)
 	setVisible(g.rocking, strip > 0)
 	setVisible(g.rocked, strip > 0)
+	setVisible(g.reach, strip > 0)
 	edge := max(60, min(wide, high(strip), mostEdge))
 
 	// What the maps leave free goes left and right of them, and between the columns.
@@ -367,8 +373,12 @@ func (g *grid) Layout(_ []fyne.CanvasObject, size fyne.Size) {
 	g.ledger.layout(left, y+g.barHeight(), gutter, func(j int) float32 { return x(j) }, edge)
 	if strip > 0 {
 		top := y + foot + beneath
-		place(g.rocking, left, top-3, gutter, lineHeight())
-		place(g.rocked, left, top+lineHeight()-1, gutter-10, strip-beneath-lineHeight())
+		name := fyne.MeasureText(g.rocking.text, theme.TextSize(), g.rocking.style).Width + 4
+		field := fyne.MeasureText("00.00", theme.TextSize(), fyne.TextStyle{}).Width + 2*theme.InnerPadding()
+		high := g.reach.MinSize().Height
+		place(g.rocking, left, top+(high-lineHeight())/2-3, name, lineHeight())
+		place(g.reach, left+name, top-3, min(field, gutter-name-4), high)
+		place(g.rocked, left, top+high-3, gutter-10, strip-beneath-high+3)
 		place(g.strip, x(0), top, float32(columns)*pitch-between+curveNames, strip-beneath)
 	}
 	g.tellPixels(edge)

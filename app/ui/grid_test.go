@@ -1,6 +1,7 @@
 package ui
 
 import (
+	"math"
 	"strings"
 	"testing"
 
@@ -68,5 +69,21 @@ func TestSamplesAreOpenedByOutline(t *testing.T) {
 	}
 	if got := r.bench.Doc.Plan().File; got != "trillion.toml" {
 		t.Errorf("on the bench lies %q", got)
+	}
+}
+
+func TestStripTakesItsOwnRange(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	r.refined(t)
+	rocked := func() bool { s := r.bench.Look.Strip; return s != nil && s.Done && !r.bench.Look.Progress().Active }
+	r.until(t, "the strip", rocked)
+	typeInto(r, r.grid.reach, "33")
+	r.until(t, "the strip of another range", func() bool { return rocked() && r.bench.Look.Strip.Tilts[0].Degrees() < -32 })
+	if got := r.bench.Look.Strip.Tilts; math.Abs(got[len(got)-1].Degrees()-33) > 1e-9 {
+		t.Errorf("the strip ends at %v", got[len(got)-1])
+	}
+	typeInto(r, r.grid.reach, "95")
+	if !strings.HasPrefix(r.message.text, "Not taken: ") || r.bench.Look.StripRange().Degrees() > 34 {
+		t.Errorf("95° is taken; the window says %q", r.message.text)
 	}
 }

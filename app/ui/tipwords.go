@@ -12,7 +12,7 @@ const (
 	tipTurn  = "Index that the stone is rocked toward, as on the gear"
 	tipHead  = "Half-angle of the cone that the viewer's head takes out of the light"
 	tipLight = "The light under which true colour is seen"
-	tipRange = "How far the strip rocks the stone to either side"
+	tipRange = "How far the strip rocks the stone to either side, in degrees, toward the index above the maps and away from it"
 
 	tipMedium = "What surrounds the stone in this column, without or with a dish"
 	tipRow    = "What this row of maps shows"

@@ -145,6 +145,7 @@ func (w *window) build() {
 	}
 	w.tilt = degrees(func(s *trace.Settings, a facets.Angle) { s.View.Tilt = a }, 80, "the tilt", 1)
 	w.tilt.read, w.tilt.commit = readTilt, w.setTilt
+	w.grid.reach.trouble = w.say
 	w.grid.onTilt = func(a facets.Angle) { w.say(w.setTilt(a.Degrees())) }
 	w.head = degrees(func(s *trace.Settings, a facets.Angle) { s.Head = a }, 60, "the half-angle of the viewer's head", 1)
 	w.shines = newChooser(theme.SizeNameText, w.lightItems)
@@ -184,6 +185,7 @@ func (w *window) giveTips() {
 	give(&w.turn.tip, tipTurn)
 	give(&w.head.tip, tipHead)
 	give(&w.shines.tip, tipLight)
+	give(&w.grid.reach.tip, tipRange)
 	for r := range rooms {
 		give(&w.doors[r].tip, tipRoom(r))
 	}
