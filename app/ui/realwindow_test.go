@@ -256,7 +256,7 @@ func (p *program) ended() {
 	case <-time.After(patience):
 		p.t.Fatalf("the program did not end within %v:\n%s", patience, p.said())
 	}
-	for _, bad := range []string{"Error in Fyne call thread", "panic", "DATA RACE"} {
+	for _, bad := range []string{"Error in Fyne call thread", "panic", "DATA RACE", "HELD "} {
 		if strings.Contains(p.said(), bad) {
 			p.t.Errorf("the program says %q:\n%s", bad, p.said())
 		}

@@ -47,7 +47,7 @@ func Run(ctx context.Context, o Options) error {
 	if err != nil {
 		return err
 	}
-	w, err := newWindow(a, doc, post, stages(started))
+	w, err := newWindow(a, doc, watched(post), stages(started))
 	if err != nil {
 		return err
 	}
