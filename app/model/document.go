@@ -152,3 +152,6 @@ func (d *Document) Seen(now Stamp) Outside {
 	}
 	return Changed
 }
+
+// First returns the plan as it was when the document was opened, as far as is remembered.
+func (d *Document) First() *facets.Plan { return d.history.steps[0].state }

@@ -248,6 +248,8 @@ func (w *window) stopRooms() {
 	w.bench.Look.Close()
 	w.tuning.tune.Stop()
 	w.cutting.cut.Stop()
+	w.telling.tell.Stop()
 	w.tuning.tune.Wait()
 	w.cutting.cut.Wait()
+	w.telling.tell.Wait()
 }

@@ -23,15 +23,6 @@ const (
 
 func (r room) String() string { return [...]string{"Look", "Tune", "Cut", "Tell"}[r] }
 
-// coming says what a room that this build lacks will hold, and what does the job today.
-func (r room) coming() string {
-	if r == tellRoom {
-		return "Here the report for a client will be put together: two stones or three surroundings side by side, and the tilt animation. " +
-			"This build does not write it in the window; pavilight look PLAN --out FOLDER writes the maps as pictures."
-	}
-	return ""
-}
-
 // roomButton leads to a room; the one that is open is underlined.
 type roomButton struct {
 	widget.BaseWidget

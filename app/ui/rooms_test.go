@@ -183,6 +183,34 @@ func TestTuneRoomAsksWhatTheQuestionNeeds(t *testing.T) {
 	}
 }
 
+// The report follows the plan, and what is written on it follows the fields.
+func TestTellRoomShowsTheReport(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	r.refined(t)
+	u := &r.telling
+	u.tell.Pixels, u.tell.Error = 48, 0.02
+	r.enter(tellRoom)
+	if !r.tellBox.Visible() || r.body.Visible() || !u.hinted.Visible() || !u.pdf.Disabled() {
+		t.Errorf("shown %v, hint %v", r.tellBox.Visible(), u.hinted.Visible())
+	}
+	r.until(t, "the report", func() bool { return u.tell.Ready() && u.tell.Picture != nil })
+	if !u.paper.Visible() || u.pdf.Disabled() || !strings.HasPrefix(u.place.text, "page 1 of ") {
+		t.Errorf("pages shown %v, %q", u.paper.Visible(), u.place.text)
+	}
+	first := u.page.picture.Image
+	u.page.TypedKey(press(fyne.KeyPageDown))
+	r.until(t, "the second page", func() bool { return u.page.picture.Image != first })
+	if items := r.stonesBeside(); !items[1].Disabled {
+		t.Error("an unchanged plan can be set beside itself")
+	}
+	path := filepath.Join(t.TempDir(), "report.html")
+	r.writeReportTo(path)
+	r.until(t, "the file", func() bool { return strings.Contains(r.message.text, path) })
+	if _, err := os.Stat(path); err != nil {
+		t.Error(err)
+	}
+}
+
 // Nothing of the rooms lies outside the window at the two sizes.
 func TestRoomsFitTheWindow(t *testing.T) {
 	for _, size := range []fyne.Size{{Width: 1360, Height: 860}, {Width: 1024, Height: 700}} {
@@ -202,6 +230,10 @@ func TestRoomsFitTheWindow(t *testing.T) {
 		r.enter(tuneRoom)
 		inside("begin", r.tuning.begin)
 		inside("take", r.tuning.take)
+		r.telling.tell.Pixels, r.telling.tell.Error = 48, 0.02
+		r.enter(tellRoom)
+		inside("report's pdf", r.telling.pdf)
+		inside("report's html", r.telling.html)
 		r.enter(cutRoom)
 		r.showFilm(true)
 		c.cut.GoTo(c.cut.Steps())

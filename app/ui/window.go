@@ -39,11 +39,9 @@ type window struct {
 	stop     *tipButton
 
 	// rooms
-	room   room
-	panes  *paneLayout
-	body   *fyne.Container
-	coming *fyne.Container
-	notice *widget.Label
+	room  room
+	panes *paneLayout
+	body  *fyne.Container
 
 	list     *tierList
 	troubles *widget.Label
@@ -67,6 +65,8 @@ type window struct {
 	tuneBox fyne.CanvasObject
 	cutting cutBench
 	cutBox  fyne.CanvasObject
+	telling tellBench
+	tellBox fyne.CanvasObject
 
 	tips    *tipLayer
 	message *line
@@ -223,17 +223,13 @@ func (w *window) setTilt(deg float64) error {
 func (w *window) content() fyne.CanvasObject {
 	w.panes = &paneLayout{files: w.files}
 	w.body = container.New(w.panes, w.planPane(), w.lookPane(), w.stonePane())
-	w.notice = widget.NewLabel("")
-	w.notice.Wrapping = fyne.TextWrapWord
-	w.notice.Alignment = fyne.TextAlignCenter
-	w.coming = container.NewCenter(container.NewGridWrap(fyne.NewSize(460, 160), w.notice))
-	w.coming.Hide()
-	w.tuneBox, w.cutBox = w.buildTuneRoom(), w.buildCutRoom()
+	w.tuneBox, w.cutBox, w.tellBox = w.buildTuneRoom(), w.buildCutRoom(), w.buildTellRoom()
 	w.tuneBox.Hide()
 	w.cutBox.Hide()
+	w.tellBox.Hide()
 	status := container.New(layout.NewCustomPaddedLayout(2, 4, 12, 12), container.NewGridWithColumns(2, w.message, w.light))
 	return container.NewStack(container.NewBorder(w.headerBar(), status, nil, nil,
-		container.NewStack(w.body, w.tuneBox, w.cutBox, w.coming)), w.tips.box)
+		container.NewStack(w.body, w.tuneBox, w.cutBox, w.tellBox)), w.tips.box)
 }
 
 func (w *window) headerBar() fyne.CanvasObject {
@@ -328,11 +324,8 @@ func (w *window) enter(r room) {
 	setVisible(w.body, r == lookRoom)
 	setVisible(w.tuneBox, r == tuneRoom)
 	setVisible(w.cutBox, r == cutRoom)
-	setVisible(w.coming, r == tellRoom)
+	setVisible(w.tellBox, r == tellRoom)
 	w.cutting.film.halt()
-	if r == tellRoom {
-		w.notice.SetText(r.coming())
-	}
 	w.followPlan()
 	w.refreshProgress()
 }
@@ -345,6 +338,8 @@ func (w *window) followPlan() {
 		w.refreshTune()
 	case cutRoom:
 		w.enterCut()
+	case tellRoom:
+		w.enterTell()
 	}
 }
 
@@ -532,6 +527,8 @@ func (w *window) running() runState {
 		return w.tuning.at()
 	case cutRoom:
 		return w.cutting.at()
+	case tellRoom:
+		return w.telling.at()
 	}
 	p := w.bench.Look.Progress()
 	return runState{w.bench.Look.Status(), p.Share, p.Active, p.Stopped}
@@ -560,6 +557,10 @@ func (w *window) stopOrResume() {
 		w.cutting.cut.Again()
 	case w.room == cutRoom:
 		w.cutting.cut.Stop()
+	case w.room == tellRoom && stopped:
+		w.telling.tell.Again()
+	case w.room == tellRoom:
+		w.telling.tell.Stop()
 	case w.room == tuneRoom:
 		w.tuning.tune.Stop()
 	case stopped:
