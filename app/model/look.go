@@ -221,6 +221,7 @@ func (l *Look) SetRow(row int, s Shown) {
 	l.Row[row] = s
 	if l.Frame != nil {
 		l.show(l.repaint(l.Frame))
+		l.paintColourLater()
 	}
 	l.wantExtras()
 	l.onChange(MapsChanged)
@@ -404,7 +405,15 @@ func (l *Look) repaint(f *Frame) *Frame {
 	again.Row = l.Row
 	again.Pictures = l.buffers.take(len(f.Result.Columns), f.Settings.Pixels)
 	for i := range again.Row {
-		if again.Row[i] != f.Row[i] {
+		switch {
+		case again.Row[i] == f.Row[i]:
+		case again.Row[i] == TrueColour: // takes too long here: see paintColourLater
+			again.Fields[i], again.Late[i] = nil, true
+			for _, dst := range again.Pictures[i] {
+				clear(dst.Pix)
+			}
+			continue
+		default:
 			l.paintRow(&again, i)
 			continue
 		}
@@ -452,6 +461,7 @@ func (l *Look) arrived(r *run, f *Frame) {
 		l.buffers.giveBack(painted)
 	}
 	l.show(f)
+	l.paintColourLater()
 	l.onChange(MapsChanged)
 	l.advance()
 }

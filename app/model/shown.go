@@ -248,6 +248,28 @@ func roundAbove(v float64) float64 {
 	return 10 * ten
 }
 
+// paintColourLater paints, on another goroutine, the colours that the frame holds and
+// does not show yet: some hundred thousand of them would hold the window's up.
+func (l *Look) paintColourLater() {
+	f := l.Frame
+	for i := range f.Row {
+		if f.Row[i] == TrueColour && f.Late[i] && f.Seen != nil && f.extras.colour {
+			go func() {
+				painted := l.paint(*f)
+				l.do(func() {
+					if l.Frame != f {
+						l.buffers.giveBack(painted)
+						return
+					}
+					l.show(painted)
+					l.onChange(MapsChanged)
+				})
+			}()
+			return
+		}
+	}
+}
+
 // keepLate lets the rows of a frame that nothing is known for yet show what was there
 // before, which is marked as late.
 func (f *Frame) keepLate(before *Frame) {

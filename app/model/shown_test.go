@@ -91,6 +91,20 @@ func TestOnlyWhatIsNotKnownIsTraced(t *testing.T) {
 		if err := s.SetLight("ring"); err != nil || runs() != 3 {
 			t.Errorf("a light for no colour: %v, %d runs", err, runs())
 		}
+		s.SetRow(1, TrueColour)
+		s.window.settle()
+		s.report(t, 1)
+		s.report(t, 1)
+		before := runs()
+		s.SetRow(1, Shown(trace.Leaked))
+		s.SetRow(1, TrueColour)
+		if !s.Late(1) {
+			t.Error("colour is painted on the window's goroutine")
+		}
+		s.window.settle()
+		if runs() != before || s.Late(1) {
+			t.Errorf("colour that is known: %d runs more, late %v", runs()-before, s.Late(1))
+		}
 		if err := s.SetLight("moon"); err == nil || s.Light() != "ring" {
 			t.Errorf("an unknown light: %v, now %s", err, s.Light())
 		}
