@@ -81,7 +81,7 @@ func (k *cutCommand) Run(c call) error {
 	if err != nil {
 		return err
 	}
-	media, err := surroundings("--in", k.In)
+	media, err := surroundings(c.library, "--in", k.In)
 	if err != nil {
 		return err
 	}
@@ -278,7 +278,7 @@ func (f *subjectFlags) plan(c call) (*facets.Plan, *gems.Material, error) {
 	if f.Width != 0 {
 		plan.WidthMM = f.Width
 	}
-	material, err := f.materialOf(plan)
+	material, err := f.materialOf(c.library, plan)
 	if err != nil && f.Material == "" {
 		err = facets.Faults{materialFault(plan, err)}
 	}

@@ -13,7 +13,9 @@ import (
 
 	"github.com/alecthomas/kong"
 
+	"pavilight/app/stock"
 	"pavilight/facets"
+	"pavilight/gems"
 	"pavilight/trace"
 )
 
@@ -21,6 +23,8 @@ import (
 type line struct {
 	Help helpFlag `short:"h" help:"Show what a command does and takes."`
 	JSON bool     `name:"json" help:"Print the results as JSON."`
+
+	Materials string `type:"word" placeholder:"FILE" help:"Materials of your own, a TOML file; without it materials.toml in Pavilight's folder of settings, if it is there."`
 
 	Look  lookCommand  `cmd:"" help:"Show where the light goes: ledger and maps."`
 	Check checkCommand `cmd:"" help:"Solve and measure the solid, and report every fault."`
@@ -36,6 +40,8 @@ type call struct {
 	env  Environment
 	out  io.Writer // results; printed when the command is done
 	json bool
+
+	library *gems.Library // of all materials at hand
 }
 
 // warn prints a warning.
@@ -83,7 +89,11 @@ func run(ctx context.Context, args []string, env Environment, out io.Writer) err
 	if err != nil {
 		return commandFault(err)
 	}
-	return k.Run(call{Context: ctx, env: env, out: out, json: l.JSON})
+	library, err := stock.Open(l.Materials)
+	if err != nil {
+		return inputFault(err)
+	}
+	return k.Run(call{Context: ctx, env: env, out: out, json: l.JSON, library: library})
 }
 
 // windowAsked reports whether the arguments ask for the window, and on which file:

@@ -36,9 +36,9 @@ func against() []string { return []string{"air", "water", "oil"} }
 
 // Run prints one material or all of them.
 func (g *gemsCommand) Run(c call) error {
-	materials := gems.Standard().Materials()
+	materials := c.library.Materials()
 	if g.Name != "" {
-		m, err := findMaterial(g.Name)
+		m, err := findMaterial(c.library, g.Name)
 		if err != nil {
 			return err
 		}
@@ -65,9 +65,9 @@ func (g *gemsCommand) Run(c call) error {
 	return nil
 }
 
-// findMaterial finds a bundled material by key or name.
-func findMaterial(name string) (*gems.Material, error) {
-	m, err := gems.Find(name)
+// findMaterial finds a material by key or name.
+func findMaterial(library *gems.Library, name string) (*gems.Material, error) {
+	m, err := library.Find(name)
 	var unknown *gems.UnknownError
 	if errors.As(err, &unknown) {
 		return nil, inputFault(err)

@@ -123,7 +123,7 @@ const mostCells = 5e6
 
 // Run traces the stone and prints what was found.
 func (l *lookCommand) Run(c call) error {
-	around, err := l.surroundings()
+	around, err := l.surroundings(c.library)
 	if err != nil {
 		return err
 	}
@@ -142,7 +142,7 @@ func (l *lookCommand) Run(c call) error {
 	if err := s.wantMaterial(); err != nil {
 		return err
 	}
-	scene, err := l.scene(s)
+	scene, err := l.scene(c.library, s)
 	if err != nil {
 		return err
 	}
@@ -233,7 +233,7 @@ func (l *lookCommand) Run(c call) error {
 const usualDistance = 300
 
 // surroundings reads a flag's list of names and plain refractive indices.
-func surroundings(flag, list string) ([]*gems.Material, error) {
+func surroundings(library *gems.Library, flag, list string) ([]*gems.Material, error) {
 	const most = 12 // columns that a sheet can hold side by side
 	names := strings.Split(list, ",")
 	if len(names) > most {
@@ -246,7 +246,7 @@ func surroundings(flag, list string) ([]*gems.Material, error) {
 		if name == "" {
 			return nil, commandFaultf("%s %q: a name is missing beside a comma", flag, list)
 		}
-		m, err := surrounding(flag, name)
+		m, err := surrounding(library, flag, name)
 		if err != nil {
 			return nil, err
 		}
@@ -259,10 +259,10 @@ func surroundings(flag, list string) ([]*gems.Material, error) {
 	return media, nil
 }
 
-func surrounding(flag, name string) (*gems.Material, error) {
+func surrounding(library *gems.Library, flag, name string) (*gems.Material, error) {
 	index, err := strconv.ParseFloat(name, 64)
 	if err != nil {
-		return findMaterial(name)
+		return findMaterial(library, name)
 	}
 	m, err := gems.Plain(name, index, 0)
 	if err != nil {

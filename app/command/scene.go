@@ -33,8 +33,8 @@ type sceneFlags struct {
 }
 
 // surroundings reads --in, --dish and --wet.
-func (f *sceneFlags) surroundings() ([]trace.Surrounding, error) {
-	media, err := surroundings("--in", f.In)
+func (f *sceneFlags) surroundings(library *gems.Library) ([]trace.Surrounding, error) {
+	media, err := surroundings(library, "--in", f.In)
 	if err != nil {
 		return nil, err
 	}
@@ -49,7 +49,7 @@ func (f *sceneFlags) surroundings() ([]trace.Surrounding, error) {
 		}
 	}
 	if f.Dish != "" {
-		liquids, err := surroundings("--dish", f.Dish)
+		liquids, err := surroundings(library, "--dish", f.Dish)
 		if err != nil {
 			return nil, err
 		}
@@ -61,10 +61,10 @@ func (f *sceneFlags) surroundings() ([]trace.Surrounding, error) {
 }
 
 // scene returns the stone in all that the flags put around it.
-func (f *sceneFlags) scene(s *subject) (trace.Scene, error) {
+func (f *sceneFlags) scene(library *gems.Library, s *subject) (trace.Scene, error) {
 	scene := trace.Scene{Stone: s.stone, Material: s.material}
 	var err error
-	if scene.Surroundings, err = f.surroundings(); err != nil {
+	if scene.Surroundings, err = f.surroundings(library); err != nil {
 		return scene, err
 	}
 	for _, text := range f.Film {

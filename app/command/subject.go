@@ -94,7 +94,7 @@ func (f *subjectFlags) solve(c call) (*subject, error) {
 		}
 		return f.planned(c, plan)
 	case isStoneFile(f.Plan):
-		return f.scanned()
+		return f.scanned(c)
 	default:
 		return nil, f.neither()
 	}
@@ -148,7 +148,7 @@ func (f *subjectFlags) planned(c call, plan *facets.Plan) (*subject, error) {
 	if f.Width != 0 {
 		plan.WidthMM = f.Width
 	}
-	material, materialErr := f.materialOf(plan)
+	material, materialErr := f.materialOf(c.library, plan)
 	if f.Material != "" && materialErr != nil {
 		return nil, materialErr
 	}
@@ -167,12 +167,12 @@ func (f *subjectFlags) planned(c call, plan *facets.Plan) (*subject, error) {
 }
 
 // materialOf returns what the flag, or else the plan, says that the stone is made of.
-func (f *subjectFlags) materialOf(plan *facets.Plan) (*gems.Material, error) {
+func (f *subjectFlags) materialOf(library *gems.Library, plan *facets.Plan) (*gems.Material, error) {
 	switch ref := plan.Material; {
 	case f.Material != "":
-		return f.namedMaterial()
+		return f.namedMaterial(library)
 	case ref.Key != "":
-		return gems.Find(ref.Key)
+		return library.Find(ref.Key)
 	default:
 		return gems.Plain(ref.Name, ref.Index, ref.Density)
 	}
@@ -201,10 +201,10 @@ func (s *subject) wantMaterial() error {
 }
 
 // scanned reads a scan, scaled to the width that the flag asks for.
-func (f *subjectFlags) scanned() (*subject, error) {
+func (f *subjectFlags) scanned(c call) (*subject, error) {
 	s := &subject{name: strings.TrimSuffix(filepath.Base(f.Plan), filepath.Ext(f.Plan))}
 	var err error
-	if s.material, err = f.namedMaterial(); err != nil {
+	if s.material, err = f.namedMaterial(c.library); err != nil {
 		return nil, err
 	}
 	if s.stone, err = readScan(f.Plan, s.name, f.Hull, 0); err != nil || f.Width == 0 {
@@ -232,11 +232,11 @@ func readScan(path, name string, hull bool, scale float64) (*facets.Stone, error
 }
 
 // namedMaterial returns the material of the flag, nil without one.
-func (f *subjectFlags) namedMaterial() (*gems.Material, error) {
+func (f *subjectFlags) namedMaterial(library *gems.Library) (*gems.Material, error) {
 	if f.Material == "" {
 		return nil, nil
 	}
-	m, err := findMaterial(f.Material)
+	m, err := findMaterial(library, f.Material)
 	if err != nil {
 		return nil, inputFault(fmt.Errorf("--material: %w", err))
 	}
@@ -258,7 +258,7 @@ func (f *subjectFlags) measured(c call) (*subject, error) {
 		return nil, commandFault(err)
 	}
 	s := &subject{name: outline + " by its proportions"}
-	if s.material, err = f.namedMaterial(); err != nil {
+	if s.material, err = f.namedMaterial(c.library); err != nil {
 		return nil, err
 	}
 	width := f.Width

@@ -66,7 +66,7 @@ type teller struct {
 
 // Run makes the reports and writes them.
 func (t *tellCommand) Run(c call) error {
-	r, err := t.ready()
+	r, err := t.ready(c.library)
 	if err != nil {
 		return err
 	}
@@ -194,7 +194,7 @@ const (
 )
 
 // ready reads the flags that are the same for every stone.
-func (t *tellCommand) ready() (*teller, error) {
+func (t *tellCommand) ready(library *gems.Library) (*teller, error) {
 	r := &teller{tellCommand: t, folder: t.Out}
 	if r.folder == "" {
 		r.folder = "."
@@ -204,7 +204,7 @@ func (t *tellCommand) ready() (*teller, error) {
 		return nil, err
 	}
 	r.job = report.Job{Head: facets.Angle(t.Head) * facets.Degree, Pixels: t.Pixels, Error: t.Error, Seed: t.Seed, Workers: t.Workers}
-	if r.job.Media, err = surroundings("--in", t.In); err != nil {
+	if r.job.Media, err = surroundings(library, "--in", t.In); err != nil {
 		return nil, err
 	}
 	const mostMedia = 4

@@ -147,7 +147,7 @@ func (t *tuning) readStone() (err error) {
 			t.width = usualWidth
 			t.warn("No --width: the stone is taken as %d mm wide.", usualWidth)
 		}
-		if t.material, err = t.namedMaterial(); err != nil {
+		if t.material, err = t.namedMaterial(t.library); err != nil {
 			return err
 		}
 		if t.material == nil {

@@ -61,7 +61,7 @@ func (g *tuneGoal) readGoal(t *tuning) error {
 		p.Goal.Aims = append(p.Goal.Aims, aim)
 	}
 	scene := sceneFlags{In: g.In, Dish: g.Dish}
-	around, err := scene.surroundings()
+	around, err := scene.surroundings(t.library)
 	if err != nil {
 		return err
 	}
@@ -134,7 +134,7 @@ func (f *tuneLimits) readLimits(t *tuning) error {
 		if len(parts) < 2 || len(parts) > 3 {
 			return bad
 		}
-		medium, err := surroundings("--margin", parts[0])
+		medium, err := surroundings(t.library, "--margin", parts[0])
 		if err != nil {
 			return err
 		}

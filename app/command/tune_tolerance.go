@@ -189,7 +189,7 @@ func (t *tuning) move() error {
 	if t.plan == nil {
 		return commandFaultf("--to moves a plan tier by tier, and proportions have none; name a plan")
 	}
-	to, err := findMaterial(t.To)
+	to, err := findMaterial(t.library, t.To)
 	if err != nil {
 		return inputFault(fmt.Errorf("--to: %w", err))
 	}
