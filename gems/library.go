@@ -32,6 +32,17 @@ func (l *Library) With(ms ...*Material) *Library {
 	return &Library{materials: merged}
 }
 
+// Stones returns the materials that stones are cut of, in the library's order.
+func (l *Library) Stones() []*Material {
+	var stones []*Material
+	for _, m := range l.materials {
+		if m.Group != Gas && m.Group != Liquid && m.Group != Coating {
+			stones = append(stones, m)
+		}
+	}
+	return stones
+}
+
 // Materials returns all the materials in the library's order, in a fresh slice.
 func (l *Library) Materials() []*Material { return slices.Clone(l.materials) }
 

@@ -143,3 +143,27 @@ func TestSceneFaults(t *testing.T) {
 		t.Errorf("an absent panorama: exit status %d, %s", got.status, got.stderr)
 	}
 }
+
+// TestOwnMaterials takes a material of the user's own, for stone and surrounding.
+func TestOwnMaterials(t *testing.T) {
+	t.Setenv("XDG_CONFIG_HOME", t.TempDir())
+	own := file(t, "own.toml", `materials = 1
+
+[[material]]
+key = "dream"
+name = "Dreamstone"
+index = 2.0
+density = 3.0
+source = "our own bench, refractometer"
+`)
+	r := decoded[lookResult](t, quick("look", "--materials", own, "--material", "dream", "--in", "air")...)
+	if got := r.Media[0].IndexStone; got != 2 {
+		t.Errorf("index %v, want 2", got)
+	}
+	if got := runCommand("gems", "dream", "--materials", own); got.status != Done || !strings.Contains(got.stdout, "Dreamstone") {
+		t.Errorf("exit status %d, %s%s", got.status, got.stdout, got.stderr)
+	}
+	if got := runCommand(quick("look", "--materials", "absent.toml")...); got.status != InputFault || !strings.Contains(got.stderr, "absent.toml") {
+		t.Errorf("an absent file: exit status %d, %s", got.status, got.stderr)
+	}
+}

@@ -19,7 +19,8 @@ import (
 type Bench struct {
 	Doc      *Document
 	Look     *Look
-	Selected string // name of the tier picked in the list or on the solid; may be empty
+	Stock    *gems.Library // of all materials at hand
+	Selected string        // name of the tier picked in the list or on the solid; may be empty
 
 	solve    func(*facets.Plan) (*facets.Stone, error)
 	do       func(func())
@@ -31,7 +32,7 @@ type Bench struct {
 // Begin. do hands work to the window's goroutine, in order, without waiting for it;
 // onLook is told of the maps, onPlan of everything else.
 func NewBench(doc *Document, do func(func()), onLook func(Change), onPlan func()) (*Bench, error) {
-	b := &Bench{Doc: doc, do: do, onChange: onPlan, solve: (*facets.Plan).Solve}
+	b := &Bench{Doc: doc, Stock: gems.Standard(), do: do, onChange: onPlan, solve: (*facets.Plan).Solve}
 	look, err := NewLook(do, onLook)
 	if err != nil {
 		return nil, err
@@ -52,7 +53,7 @@ func (b *Bench) show() {
 
 // subject solves a plan and finds its material. It may run on any goroutine.
 func (b *Bench) subject(plan *facets.Plan) (Subject, error) {
-	material, err := MaterialOf(plan.Material)
+	material, err := b.MaterialOf(plan.Material)
 	if err != nil {
 		return Subject{}, err
 	}
@@ -64,9 +65,9 @@ func (b *Bench) subject(plan *facets.Plan) (Subject, error) {
 }
 
 // MaterialOf returns the material that a plan names or brings along.
-func MaterialOf(ref facets.MaterialRef) (*gems.Material, error) {
+func (b *Bench) MaterialOf(ref facets.MaterialRef) (*gems.Material, error) {
 	if ref.Key != "" {
-		return gems.Find(ref.Key)
+		return b.Stock.Find(ref.Key)
 	}
 	return gems.Plain(ref.Name, ref.Index, ref.Density)
 }
@@ -162,7 +163,7 @@ func (b *Bench) Save(path string) error {
 
 // Tiers returns the rows of the list, in cutting order.
 func (b *Bench) Tiers() []TierRow {
-	material, err := MaterialOf(b.Doc.Plan().Material)
+	material, err := b.MaterialOf(b.Doc.Plan().Material)
 	if err != nil {
 		material = b.Look.Subject.Material
 	}

@@ -216,7 +216,7 @@ func (w *window) showFilm(film bool) {
 // enterCut lays the sheet out anew if the plan, or how it is looked at, is another.
 func (w *window) enterCut() {
 	plan := w.bench.Doc.Plan()
-	material, err := model.MaterialOf(plan.Material)
+	material, err := w.bench.MaterialOf(plan.Material)
 	if err != nil {
 		w.say(err)
 		return

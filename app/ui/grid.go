@@ -152,7 +152,7 @@ func (g *grid) add(objects ...fyne.CanvasObject) {
 func (g *grid) mediaItems(column int) []*fyne.MenuItem {
 	now := g.bench.Look.Around[column]
 	var items []*fyne.MenuItem
-	for _, m := range gems.Surroundings() {
+	for _, m := range g.bench.Stock.Materials() {
 		if m.Group != gems.Gas && m.Group != gems.Liquid {
 			continue
 		}

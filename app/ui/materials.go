@@ -17,7 +17,7 @@ func (w *window) chooseMaterial() { w.pickMaterial("What the stone is made of", 
 
 // pickMaterial lets the user pick a material from a list that narrows as they type.
 func (w *window) pickMaterial(title string, then func(*gems.Material)) {
-	all := gems.Stones()
+	all := w.bench.Stock.Stones()
 	shown := all
 	var d *dialog.CustomDialog
 	list := widget.NewList(

@@ -15,6 +15,8 @@ import (
 	"fyne.io/fyne/v2/app"
 	"fyne.io/fyne/v2/storage/repository"
 
+	"pavilight/app/stock"
+
 	"pavilight/app/model"
 	"pavilight/facets"
 	"pavilight/testdata"
@@ -51,9 +53,16 @@ func Run(ctx context.Context, o Options) error {
 	if err != nil {
 		return err
 	}
+	materials, materialsErr := stock.Open("")
+	if materialsErr == nil {
+		w.bench.Stock = materials
+	}
 	a.Lifecycle().SetOnStarted(func() {
 		w.beginKeeping(filepath.Join(a.Storage().RootURI().Path(), "unsaved"))
 		w.started(o.Path)
+		if materialsErr != nil {
+			w.explain("Materials of your own", materialsErr)
+		}
 	})
 	// The toolkit hears signals, too, and may have ended its loop by the time that ctx tells
 	// of one; nothing may be asked of its windows then.

@@ -321,7 +321,7 @@ func (w *window) tuneAnswer() fyne.CanvasObject {
 // enterTune takes the plan as it stands, and how it is looked at.
 func (w *window) enterTune() {
 	plan := w.bench.Doc.Plan()
-	material, err := model.MaterialOf(plan.Material)
+	material, err := w.bench.MaterialOf(plan.Material)
 	if err != nil {
 		w.say(err)
 		return

@@ -419,7 +419,7 @@ func (w *window) onPlan() {
 	w.win.SetTitle(w.bench.Doc.Title() + " – Pavilight")
 	w.width.show(plan.WidthMM)
 	name := plan.Material.Name
-	if m, err := model.MaterialOf(plan.Material); err == nil {
+	if m, err := w.bench.MaterialOf(plan.Material); err == nil {
 		name = m.Name
 	}
 	w.material.setText(name)
