@@ -8,6 +8,7 @@ import (
 	"time"
 
 	"pavilight/facets"
+	"pavilight/gems"
 	"pavilight/testdata"
 	"pavilight/trace"
 )
@@ -123,7 +124,7 @@ func TestExtrasOfARealStone(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	b := &Bench{solve: (*facets.Plan).Solve}
+	b := &Bench{Stock: gems.Standard(), solve: (*facets.Plan).Solve}
 	subject, err := b.subject(plan)
 	if err != nil {
 		t.Fatal(err)

@@ -59,6 +59,7 @@ type Tell struct {
 
 	do       func(func())
 	onChange func()
+	material findMaterial
 	subject  tellSubject
 	traced   tellTraced
 	all      []*report.Findings // of traced; nil before
@@ -95,10 +96,14 @@ type tellSet struct {
 	wish   TellWish
 }
 
+// findMaterial returns the material that a plan names or brings along.
+type findMaterial func(facets.MaterialRef) (*gems.Material, error)
+
 // NewTell returns the state before a report was asked for. do hands work to the window's
-// goroutine, in order, without waiting for it; onChange is called there.
-func NewTell(do func(func()), onChange func()) *Tell {
-	t := &Tell{Wish: TellWish{Language: "en", Paper: "a4", Lights: [2]string{"overcast", "room"}}, do: do, onChange: onChange}
+// goroutine, in order, without waiting for it; onChange is called there. material finds what
+// a plan is cut from and may be called on any goroutine.
+func NewTell(do func(func()), onChange func(), material func(facets.MaterialRef) (*gems.Material, error)) *Tell {
+	t := &Tell{Wish: TellWish{Language: "en", Paper: "a4", Lights: [2]string{"overcast", "room"}}, do: do, onChange: onChange, material: material}
 	t.painter = painter{do: do, open: &t.open}
 	return t
 }
@@ -183,7 +188,7 @@ func (t *Tell) gather() {
 	}
 	t.open.Go(func() {
 		defer cancel()
-		all, err := tellGather(ctx, job, wish, plans, func(done float64) { hand(func() { t.Done = done }) })
+		all, err := tellGather(ctx, job, wish, plans, t.material, func(done float64) { hand(func() { t.Done = done }) })
 		stopped := ctx.Err() != nil
 		hand(func() {
 			t.Running, t.cancel, t.Stopped = false, nil, stopped
@@ -199,7 +204,7 @@ func (t *Tell) gather() {
 
 // tellGather traces all that is told of the plans.
 func tellGather(ctx context.Context, job *report.Job, wish TellWish, plans []*facets.Plan,
-	done func(float64)) ([]*report.Findings, error) {
+	find findMaterial, done func(float64)) ([]*report.Findings, error) {
 	for _, name := range wish.Lights {
 		if name == "" {
 			continue
@@ -218,7 +223,7 @@ func tellGather(ctx context.Context, job *report.Job, wish TellWish, plans []*fa
 	}
 	var all []*report.Findings
 	for i, plan := range plans {
-		material, err := MaterialOf(plan.Material)
+		material, err := find(plan.Material)
 		if err != nil {
 			return nil, err
 		}

@@ -36,7 +36,7 @@ func tellRoom(t *testing.T) (room *Tell, settle func()) {
 		mu.Lock()
 		defer mu.Unlock()
 		queue = append(queue, f)
-	}, func() {})
+	}, func() {}, (&Bench{Stock: gems.Standard()}).MaterialOf)
 	room.Pixels, room.Error = 48, 0.02
 	room.SetWidth(150)
 	settle = func() {

@@ -43,7 +43,7 @@ type tellBench struct {
 
 func (w *window) buildTellRoom() fyne.CanvasObject {
 	t := &w.telling
-	t.tell = model.NewTell(w.do, w.refreshTell)
+	t.tell = model.NewTell(w.do, w.refreshTell, w.bench.MaterialOf)
 	t.page = newPageView(func(by int) { t.tell.Turn(t.tell.Page + by) }, w.strayKey)
 	t.page.onWidth = t.tell.SetWidth
 	t.back = widget.NewButtonWithIcon("", theme.NavigateBackIcon(), func() { t.tell.Turn(t.tell.Page - 1) })
