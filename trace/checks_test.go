@@ -136,6 +136,7 @@ var themes = []struct{ file, title string }{
 	{"slow_test.go", "The tracer against one written as on paper"},
 	{"travel_test.go", "Dishes, body colour, paper"},
 	{"run_test.go", "Whole runs"},
+	{"path_length_test.go", "Way of the light inside, pixel by pixel"},
 	{"doors_test.go", "By which facets light leaves"},
 	{"crystal_test.go", "Double refraction at a facet"},
 	{"travel_crystal_test.go", "Double refraction in a stone"},

@@ -12,7 +12,8 @@ import (
 func TestPathLengthsOfPlate(t *testing.T) {
 	const thick = 0.04 // full thickness, mm; the plate is wide enough that no order reaches the rim
 	source := "geometric series of a plane-parallel plate: d / (1-R)"
-	scene := Scene{Stone: solid(t, box(4, 4, thick/2)), Material: plain(t, "stone", 2.4), Surroundings: Around(plain(t, "air", 1))}
+	stone, air := plain(t, "stone", 2.4), plain(t, "air", 1)
+	scene := Scene{Stone: solid(t, box(4, 4, thick/2)), Material: stone, Surroundings: Around(air)}
 	for _, settings := range []Settings{
 		{Paths: true, Wavelength: 589, Averaged: true, Pixels: 12, Samples: 8},
 		{Paths: true, Colour: true, Averaged: true, Pixels: 12, Samples: 8},

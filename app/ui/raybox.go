@@ -66,7 +66,8 @@ func (w *window) besideItems() []*fyne.MenuItem {
 		if j == r.Column {
 			continue
 		}
-		item := fyne.NewMenuItem("the same in "+strings.ToLower(w.bench.Look.Heading(j).Medium), func() { w.bench.Look.FollowBeside(j) })
+		medium := strings.ToLower(w.bench.Look.Heading(j).Medium)
+		item := fyne.NewMenuItem("the same in "+medium, func() { w.bench.Look.FollowBeside(j) })
 		item.Checked = r.Beside != nil && r.Beside.Column == j
 		items = append(items, item)
 	}
