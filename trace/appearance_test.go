@@ -76,3 +76,37 @@ func TestColourModeKeepsTheLedger(t *testing.T) {
 		near(t, "lit", b.Lit.Sum, a.Lit.Sum, 0.003, "the even light of the plain tracer")
 	}
 }
+
+// TestUniformSurroundInColour: a lossless stone in a uniform surround shows the surround's
+// colour too, above and below, whatever its dispersion.
+func TestUniformSurroundInColour(t *testing.T) {
+	diamond, err := gems.Find("diamond")
+	if err != nil {
+		t.Fatal(err)
+	}
+	light, err := FindLight("even")
+	if err != nil {
+		t.Fatal(err)
+	}
+	lamp, err := FindIlluminant("A")
+	if err != nil {
+		t.Fatal(err)
+	}
+	scene := Scene{Stone: stones(t)["round.toml"], Material: diamond, Surroundings: Around(plain(t, "air", 1))}
+	for _, paths := range []bool{false, true} { // with a kernel and without
+		r := mustRun(t, scene, Settings{Light: light.Under(lamp), Below: 1, Colour: true, Pixels: 8, Samples: 3000, Seed: 4, Paths: paths})
+		m := r.Columns[0].Map
+		var sum [3]float64
+		rays := 0.0
+		for i := range m.cells {
+			rays += float64(m.cells[i].rays)
+			for c, v := range m.colour[i] {
+				sum[c] += float64(v)
+			}
+		}
+		white := lamp.White()
+		for c, name := range []string{"X", "Y", "Z"} {
+			near(t, name, sum[c]/rays, white[c]/white[1], 0.01, "a lossless stone in a uniform surround shows the surround")
+		}
+	}
+}

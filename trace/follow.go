@@ -176,6 +176,8 @@ func (t *tracer) seen(d vec, w gems.Wavelength) float64 {
 	f := t.outline.frame
 	up := d.dot(f.eye)
 	switch {
+	case up <= 0 && t.light != nil: // paper takes the light's colour
+		return t.below * t.light.Illuminant.At(w)
 	case up <= 0:
 		return t.below
 	case up > t.headCos:
