@@ -38,6 +38,7 @@ func tellRoom(t *testing.T) (room *Tell, settle func()) {
 		queue = append(queue, f)
 	}, func() {}, (&Bench{Stock: gems.Standard()}).MaterialOf)
 	room.Pixels, room.Error = 48, 0.02
+	room.Wish.Lights[1] = ""
 	room.SetWidth(150)
 	settle = func() {
 		for {

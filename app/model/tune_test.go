@@ -204,6 +204,29 @@ func TestTuneRoomTasks(t *testing.T) {
 	}
 }
 
+// A plan that is moved to another material is kept as a plan of that material.
+func TestTuneRoomMovesToAnotherMaterial(t *testing.T) {
+	room, settle := tuneRoom(t)
+	var err error
+	if room.To, err = gems.Find("topaz"); err != nil {
+		t.Fatal(err)
+	}
+	room.Task, room.Step = MoveMaterial, 3
+	room.Choose(choice(t, room, "C"), false)
+	room.Begin()
+	settle()
+	plan, ok := room.Kept()
+	if room.Trouble != nil || !ok || plan.Material.Key != "topaz" || room.plan.Material.Key != "quartz" {
+		t.Fatalf("kept %v, trouble %v", ok, room.Trouble)
+	}
+	words := strings.Join(room.Verdict(), "\n")
+	for _, part := range []string{"As it stands, in Quartz: light return", "By the tangent rule, in Topaz: ", "By search, in Topaz: "} {
+		if !strings.Contains(words, part) {
+			t.Errorf("no word of %q in\n%s", part, words)
+		}
+	}
+}
+
 // A field is shown as it is traced, a place of it is picked by pointer or keys, and what is
 // kept stands on the machine's steps.
 func TestTuneRoomField(t *testing.T) {
@@ -263,6 +286,8 @@ func TestTuneRoomFollowsThePlan(t *testing.T) {
 	if err := room.SetLimits(p, 39, 45); err != nil {
 		t.Fatal(err)
 	}
+	room.Choose(choice(t, room, "C"), false)
+	room.Step = 3
 	room.Begin()
 	settle()
 	if _, ok := room.Kept(); !ok {

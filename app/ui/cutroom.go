@@ -27,8 +27,8 @@ type cutBench struct {
 	film     *filmView
 	trouble  *fyne.Container
 	troubles *widget.Label
-	back     *widget.Button
-	next     *widget.Button
+	back     *tipButton
+	next     *tipButton
 	place    *line
 	zoom     *widget.Button
 	bar      *fyne.Container
@@ -53,8 +53,8 @@ func (w *window) buildCutRoom() fyne.CanvasObject {
 		c.doors[k] = newRoomButton(name, func() { w.showFilm(k == 1) })
 	}
 	c.doors[0].setOpen(true)
-	c.back = widget.NewButtonWithIcon("", theme.NavigateBackIcon(), func() { c.cut.Turn(c.cut.Page - 1) })
-	c.next = widget.NewButtonWithIcon("", theme.NavigateNextIcon(), func() { c.cut.Turn(c.cut.Page + 1) })
+	c.back = w.tips.button("", theme.NavigateBackIcon(), tipPageBack, func() { c.cut.Turn(c.cut.Page - 1) })
+	c.next = w.tips.button("", theme.NavigateNextIcon(), tipPageNext, func() { c.cut.Turn(c.cut.Page + 1) })
 	c.place = newWord(colourDim, theme.SizeNameText, "")
 	c.zoom = widget.NewButton("Whole page", func() {
 		c.page.setWhole(!c.page.whole)
@@ -103,6 +103,7 @@ func (w *window) cutWishes() fyne.CanvasObject {
 	order.SetSelected(orders[0])
 	order.OnChanged = func(chosen string) { change(func(w *model.CutWish) { w.Opposites = chosen == orders[1] }) }
 	c.machine = newChooser(theme.SizeNameText, w.machineItems)
+	c.machine.tip = tip{w.tips, tipMachine}
 	c.machine.setText(plainMachine)
 	check := func(words string, on bool, set func(*model.CutWish, bool)) fyne.CanvasObject {
 		box := widget.NewCheck(words, nil)
@@ -256,8 +257,8 @@ func (w *window) refreshCut() {
 	}
 	if !failed && !c.filming {
 		c.place.setText(fmt.Sprintf("page %d of %d", c.cut.Page+1, c.cut.Pages()))
-		enable(c.back, c.cut.Page > 0)
-		enable(c.next, c.cut.Page+1 < c.cut.Pages())
+		enable(&c.back.Button, c.cut.Page > 0)
+		enable(&c.next.Button, c.cut.Page+1 < c.cut.Pages())
 		c.page.show(c.cut.Picture, c.cut.Shape())
 		if c.last != c.cut.Page {
 			c.last = c.cut.Page
@@ -335,6 +336,11 @@ func (w *window) writeSheetTo(path string) {
 
 // printSheet hands the sheet to the system's own viewer, which prints it.
 func (w *window) printSheet() {
+	w.enter(cutRoom)
+	if !w.cutting.cut.Ready() {
+		w.report("The sheet is not laid out yet; print it when it is.")
+		return
+	}
 	w.report("The sheet is handed to the system's viewer.")
 	w.cutting.cut.Print(openWithSystem, func(path string, err error) {
 		if err != nil {

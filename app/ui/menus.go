@@ -56,6 +56,8 @@ func (w *window) buildMenu() *fyne.MainMenu {
 		m.save,
 		item("Save as…", controlShift(fyne.KeyS), w.saveAs),
 		fyne.NewMenuItemSeparator(),
+		item("Print the sheet…", control(fyne.KeyP), w.printSheet),
+		fyne.NewMenuItemSeparator(),
 		quit)
 
 	m.undo = item("Undo", &fyne.ShortcutUndo{}, w.undo)

@@ -11,6 +11,7 @@ import (
 	"fyne.io/fyne/v2/test"
 
 	"pavilight/app/model"
+	"pavilight/app/sheet"
 	"pavilight/testdata"
 )
 
@@ -107,12 +108,29 @@ func TestSheetIsWrittenFromTheRoom(t *testing.T) {
 	r.escape()
 }
 
-// A new machine's description is written once and is then in the list.
+// A new machine's description is written once, is then in the list, and its numbers are
+// those of the sheet.
 func TestMachineIsDescribed(t *testing.T) {
 	r := inCut(t, fyne.NewSize(usualWidth, usualHeight))
-	r.cutting.cut.Machines = "" // as without a folder for settings
-	if _, err := r.cutting.cut.NewMachine("mine"); err == nil {
-		t.Error("a machine is written nowhere")
+	c := &r.cutting
+	c.cut.Machines = sheet.Machines(filepath.Join(t.TempDir(), "machines"))
+	if _, err := c.cut.NewMachine("old red"); err != nil {
+		t.Fatal(err)
+	}
+	for _, bad := range []string{"old red", "", "../up", ".hidden"} {
+		if path, err := c.cut.NewMachine(bad); err == nil {
+			t.Errorf("%q is written to %s", bad, path)
+		}
+	}
+	before := c.cut.Sheet
+	for _, item := range r.machineItems() {
+		if item.Label == "old red" {
+			item.Action()
+		}
+	}
+	r.until(t, "the sheet for it", func() bool { return c.cut.Ready() && c.cut.Sheet != before })
+	if c.cut.Sheet.Machine.Name != "old red" || c.machine.text != "old red" {
+		t.Errorf("the sheet is for %q, the pane says %q", c.cut.Sheet.Machine.Name, c.machine.text)
 	}
 }
 

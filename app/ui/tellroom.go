@@ -30,8 +30,8 @@ type tellBench struct {
 	troubles   *widget.Label
 	bar        *fyne.Container
 	turner     *fyne.Container
-	back       *widget.Button
-	next       *widget.Button
+	back       *tipButton
+	next       *tipButton
 	place      *line
 	beside     *chooser
 	letterhead *chooser
@@ -46,8 +46,8 @@ func (w *window) buildTellRoom() fyne.CanvasObject {
 	t.tell = model.NewTell(w.do, w.refreshTell, w.bench.MaterialOf)
 	t.page = newPageView(func(by int) { t.tell.Turn(t.tell.Page + by) }, w.strayKey)
 	t.page.onWidth = t.tell.SetWidth
-	t.back = widget.NewButtonWithIcon("", theme.NavigateBackIcon(), func() { t.tell.Turn(t.tell.Page - 1) })
-	t.next = widget.NewButtonWithIcon("", theme.NavigateNextIcon(), func() { t.tell.Turn(t.tell.Page + 1) })
+	t.back = w.tips.button("", theme.NavigateBackIcon(), tipPageBack, func() { t.tell.Turn(t.tell.Page - 1) })
+	t.next = w.tips.button("", theme.NavigateNextIcon(), tipPageNext, func() { t.tell.Turn(t.tell.Page + 1) })
 	t.place = newWord(colourDim, theme.SizeNameText, "")
 	var zoom *widget.Button
 	zoom = widget.NewButton("Whole page", func() {
@@ -134,6 +134,7 @@ func (w *window) tellWishes() fyne.CanvasObject {
 	t.letterhead = newChooser(theme.SizeNameText, w.letterheadItems)
 	t.letterhead.setText("none")
 	t.beside = newChooser(theme.SizeNameText, w.stonesBeside)
+	t.beside.tip = tip{w.tips, tipOther}
 	t.beside.setText("nothing")
 	t.pdf = widget.NewButton("Save as PDF…", func() { w.writeReport(".pdf") })
 	t.pdf.Importance = widget.HighImportance
@@ -249,8 +250,8 @@ func (w *window) refreshTell() {
 	t.notes.setText(strings.Join(t.tell.Notes(), " "))
 	if some {
 		t.place.setText(fmt.Sprintf("page %d of %d", t.tell.Page+1, t.tell.Pages()))
-		enable(t.back, t.tell.Page > 0)
-		enable(t.next, t.tell.Page+1 < t.tell.Pages())
+		enable(&t.back.Button, t.tell.Page > 0)
+		enable(&t.next.Button, t.tell.Page+1 < t.tell.Pages())
 		t.page.show(t.tell.Picture, t.tell.Shape())
 		if t.last != t.tell.Page {
 			t.last = t.tell.Page

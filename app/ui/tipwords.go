@@ -25,10 +25,15 @@ const (
 	tipAngle  = "Angle from the girdle's plane, 0° at the table. Also 41,8 or 41 deg 48 min"
 	tipSlider = "Drag to see all maps follow. Ticks are critical angles: below its tick a pavilion facet begins to leak"
 
-	tipBeside = "Follow the same ray in another surrounding"
-	tipCopy   = "Put the ray on the clipboard, as a table"
-	tipDraw   = "Draw the ray into a file, or tell it as text"
-	tipLetGo  = "Follow no ray any more (Esc)"
+	tipBeside   = "Follow the same ray in another surrounding"
+	tipCopy     = "Put the ray on the clipboard, as a table"
+	tipDraw     = "Draw the ray into a file, or tell it as text"
+	tipPageBack = "The page before (Page Up)"
+	tipPageNext = "The next page (Page Down)"
+	tipMachine  = "The machine whose numbers the sheet prints; yours can be described"
+	tipOther    = "A stone to set beside this one, on the same scales"
+
+	tipLetGo = "Follow no ray any more (Esc)"
 )
 
 // tipRoom says what a room is for.

@@ -432,7 +432,10 @@ func (w *window) refreshTune() {
 	case t.tune.Running:
 		title, hint = "So far", "The first look takes a moment."
 	case t.tune.Stopped:
-		title = "Stopped; the best so far is kept"
+		title = "Stopped"
+		if _, kept := t.tune.Kept(); kept {
+			title = "Stopped; the best so far is kept"
+		}
 	case len(lines) > 0:
 		title = "Found"
 	}
