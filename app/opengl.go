@@ -31,12 +31,14 @@ func hiddenWindow(platform glfw.Platform) error {
 	if err := glfw.Init(); err != nil {
 		return err
 	}
-	defer glfw.Terminate()
 	glfw.WindowHint(glfw.Visible, glfw.False)
 	window, err := glfw.CreateWindow(16, 16, "Pavilight", nil, nil)
 	if err != nil {
+		glfw.Terminate()
 		return err
 	}
+	// The connection stays open for the window library, which takes it over: a display
+	// whose only client leaves resets itself and turns the next one away meanwhile.
 	window.Destroy()
 	return nil
 }

@@ -48,7 +48,7 @@ func newScreen(t *testing.T, width, height int) *screen {
 		t.Fatal(err)
 	}
 	defer reader.Close()
-	server := exec.Command("Xvfb", "-displayfd", "3", "-screen", "0", fmt.Sprintf("%dx%dx24", width, height), "-nolisten", "tcp")
+	server := exec.Command("Xvfb", "-displayfd", "3", "-screen", "0", fmt.Sprintf("%dx%dx24", width, height), "-nolisten", "tcp", "-noreset")
 	server.ExtraFiles = []*os.File{writer}
 	if err := server.Start(); err != nil {
 		t.Fatal(err)
