@@ -199,6 +199,8 @@ func (c *composer) where(f *Findings) {
 		words := c.say(key, fill...)
 		if first.HasCritical && other.Ledger.Leaked > first.Ledger.Leaked+3*(first.StandardError.Leaked+other.StandardError.Leaked) {
 			words += " " + c.why(first, other)
+		} else if other.Ledger.Head > first.Ledger.Head+3*(first.StandardError.Head+other.StandardError.Head) && its[trace.Head] > parts[trace.Head] {
+			words += " " + c.say("where.head", "headsecond", c.part100(its, trace.Head), "headfirst", c.part100(parts, trace.Head))
 		}
 		said = append(said, text{words: words})
 	}
