@@ -9,7 +9,6 @@ import (
 	"fyne.io/fyne/v2/container"
 	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/layout"
-	"fyne.io/fyne/v2/storage"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
 
@@ -22,53 +21,38 @@ type cutBench struct {
 	cut      *model.Cut
 	box      *fyne.Container
 	doors    [2]*roomButton // pages, film
-	page     *pageView
+	pages    *pageTurner
 	paper    *fyne.Container // page and what goes with it
 	film     *filmView
 	trouble  *fyne.Container
 	troubles *widget.Label
-	back     *tipButton
-	next     *tipButton
-	place    *line
-	zoom     *widget.Button
 	bar      *fyne.Container
-	turner   *fyne.Container
 	machine  *chooser
 	gears    *widget.Entry
 	notes    *wrapped
 	write    *widget.Button
 	print    *widget.Button
 	filming  bool
-	last     int // page that was in view
 }
 
 func (w *window) buildCutRoom() fyne.CanvasObject {
 	c := &w.cutting
 	machines, _ := sheet.UserMachines() // without a folder there is the plain machine
 	c.cut = model.NewCut(machines, w.do, w.refreshCut)
-	c.page = newPageView(func(by int) { c.cut.Turn(c.cut.Page + by) }, w.strayKey)
-	c.page.onWidth = c.cut.SetWidth
+	c.pages = w.newPageTurner(func(by int) { c.cut.Turn(c.cut.Page + by) }, c.cut.SetWidth)
 	c.film = newFilmView(c.cut, w.do, w.strayKey)
 	for k, name := range []string{"Pages", "Step by step"} {
 		c.doors[k] = newRoomButton(name, func() { w.showFilm(k == 1) })
 	}
 	c.doors[0].setOpen(true)
-	c.back = w.tips.button("", theme.NavigateBackIcon(), tipPageBack, func() { c.cut.Turn(c.cut.Page - 1) })
-	c.next = w.tips.button("", theme.NavigateNextIcon(), tipPageNext, func() { c.cut.Turn(c.cut.Page + 1) })
-	c.place = newWord(colourDim, theme.SizeNameText, "")
-	c.zoom = widget.NewButton("Whole page", func() {
-		c.page.setWhole(!c.page.whole)
-		c.zoom.SetText(map[bool]string{true: "Page width", false: "Whole page"}[c.page.whole])
-	})
-	c.turner = container.NewHBox(c.back, c.place, c.next, gap(8), c.zoom)
-	c.bar = container.NewBorder(nil, nil, container.NewHBox(c.doors[0], c.doors[1]), c.turner)
+	c.bar = container.NewBorder(nil, nil, container.NewHBox(c.doors[0], c.doors[1]), c.pages.bar)
 	c.troubles = widget.NewLabel("")
 	c.troubles.Wrapping = fyne.TextWrapWord
 	c.troubles.Selectable = true
 	heading := newWord(theme.ColorNameError, theme.SizeNameSubHeadingText, "There is no sheet of this plan").bold()
 	c.trouble = container.NewCenter(container.NewGridWrap(fyne.NewSize(560, 300),
 		container.NewBorder(heading, nil, nil, nil, container.NewVScroll(c.troubles))))
-	c.paper = container.NewStack(ground(theme.ColorNameBackground), c.page.scroll)
+	c.paper = container.NewStack(ground(theme.ColorNameBackground), c.pages.page.scroll)
 	right := container.NewBorder(pane(container.New(layout.NewCustomPaddedLayout(4, 4, 10, 10), c.bar)), nil, nil, nil,
 		container.NewStack(c.paper, c.film.box, c.trouble))
 	c.box = container.New(&sideLayout{width: planWide}, pane(w.cutWishes()), right)
@@ -235,8 +219,8 @@ func (w *window) refreshCut() {
 	setVisible(c.trouble, failed)
 	setVisible(c.film.box, c.filming && !failed)
 	setVisible(c.paper, !c.filming && !failed)
-	if turns := !c.filming && c.cut.Pages() > 0; turns != c.turner.Visible() {
-		setVisible(c.turner, turns)
+	if turns := !c.filming && c.cut.Pages() > 0; turns != c.pages.bar.Visible() {
+		setVisible(c.pages.bar, turns)
 		c.bar.Refresh() // it had no room while it was hidden
 	}
 	if failed {
@@ -256,14 +240,7 @@ func (w *window) refreshCut() {
 		c.film.refresh()
 	}
 	if !failed && !c.filming {
-		c.place.setText(fmt.Sprintf("page %d of %d", c.cut.Page+1, c.cut.Pages()))
-		enable(&c.back.Button, c.cut.Page > 0)
-		enable(&c.next.Button, c.cut.Page+1 < c.cut.Pages())
-		c.page.show(c.cut.Picture, c.cut.Shape())
-		if c.last != c.cut.Page {
-			c.last = c.cut.Page
-			c.page.scroll.ScrollToTop()
-		}
+		c.pages.show(c.cut.Page, c.cut.Pages(), c.cut.Picture, c.cut.Shape())
 	}
 	w.refreshProgress()
 	if c.cut.Ready() && c.cut.Picture != nil {
@@ -292,19 +269,7 @@ func (c *cutBench) at() runState {
 // writeSheet asks for a file and writes the pages to it as PDF.
 func (w *window) writeSheet() {
 	c := &w.cutting
-	d := dialog.NewFileSave(func(f fyne.URIWriteCloser, err error) {
-		if err != nil {
-			w.explain("The sheet cannot be written there", err)
-			return
-		}
-		if f == nil {
-			return // cancelled
-		}
-		path := f.URI().Path()
-		f.Close() // nothing was opened: see writeLater
-		if filepath.Ext(path) == "" {
-			path += ".pdf"
-		}
+	w.askTarget("Save the sheet", "The sheet cannot be written there", c.cut.FileName(), []string{".pdf"}, func(path string) {
 		answers, two := c.cut.AnswersName(path)
 		if two && exists(answers) {
 			w.raise(dialog.NewConfirm("The teacher's copy", filepath.Base(answers)+" is there already. Replace it?",
@@ -316,11 +281,7 @@ func (w *window) writeSheet() {
 			return
 		}
 		w.writeSheetTo(path)
-	}, w.win)
-	d.SetFileName(c.cut.FileName())
-	d.SetFilter(storage.NewExtensionFileFilter([]string{".pdf"}))
-	d.SetTitleText("Save the sheet")
-	w.showFileDialog(d)
+	})
 }
 
 func (w *window) writeSheetTo(path string) {

@@ -95,6 +95,30 @@ func (w *window) openDialog() {
 	})
 }
 
+// askTarget asks for a file to write to and hands on its path. A name without an ending
+// gets the first of those that are offered.
+func (w *window) askTarget(title, trouble, name string, endings []string, then func(path string)) {
+	d := dialog.NewFileSave(func(f fyne.URIWriteCloser, err error) {
+		if err != nil {
+			w.explain(trouble, err)
+			return
+		}
+		if f == nil {
+			return // cancelled
+		}
+		path := f.URI().Path()
+		f.Close() // nothing was opened: see writeLater
+		if filepath.Ext(path) == "" {
+			path += endings[0]
+		}
+		then(path)
+	}, w.win)
+	d.SetFileName(name)
+	d.SetFilter(storage.NewExtensionFileFilter(endings))
+	d.SetTitleText(title)
+	w.showFileDialog(d)
+}
+
 func (w *window) showFileDialog(d *dialog.FileDialog) {
 	if folder, err := storage.ListerForURI(storage.NewFileURI(w.folder())); err == nil {
 		d.SetLocation(folder)
@@ -136,25 +160,8 @@ func (w *window) saveAs() { w.commitTyping(); w.saveAsThen(func() {}) }
 
 // saveAsThen asks for a file and writes the plan to it.
 func (w *window) saveAsThen(then func()) {
-	d := dialog.NewFileSave(func(f fyne.URIWriteCloser, err error) {
-		if err != nil {
-			w.explain("The plan cannot be saved there", err)
-			return
-		}
-		if f == nil {
-			return // cancelled
-		}
-		path := f.URI().Path()
-		f.Close() // nothing was opened: see writeLater
-		if filepath.Ext(path) == "" {
-			path += ".toml"
-		}
-		w.write(path, then)
-	}, w.win)
-	d.SetFileName(w.bench.Doc.FileName())
-	d.SetFilter(storage.NewExtensionFileFilter([]string{".toml"}))
-	d.SetTitleText("Save the plan as")
-	w.showFileDialog(d)
+	w.askTarget("Save the plan as", "The plan cannot be saved there", w.bench.Doc.FileName(), []string{".toml"},
+		func(path string) { w.write(path, then) })
 }
 
 func (w *window) write(path string, then func()) {

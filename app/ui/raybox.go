@@ -9,9 +9,7 @@ import (
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/container"
-	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/layout"
-	"fyne.io/fyne/v2/storage"
 	"fyne.io/fyne/v2/theme"
 
 	"pavilight/app/disk"
@@ -99,30 +97,15 @@ func (w *window) saveRay() {
 		return
 	}
 	page := r.Page(w.bench.Look.Subject.Stone.Name)
-	d := dialog.NewFileSave(func(f fyne.URIWriteCloser, err error) {
-		if err != nil {
-			w.explain("The ray cannot be drawn there", err)
-			return
-		}
-		if f == nil {
-			return // cancelled
-		}
-		path := f.URI().Path()
-		f.Close() // nothing was opened: see writeLater
-		if filepath.Ext(path) == "" {
-			path += ".svg"
-		}
-		if err := writeRay(path, page, r.Text()); err != nil {
-			w.explain("The ray was not drawn", err)
-			return
-		}
-		w.report("Drawn as " + path)
-		w.tell("drawn")
-	}, w.win)
-	d.SetFileName("ray.svg")
-	d.SetFilter(storage.NewExtensionFileFilter([]string{".svg", ".png", ".txt"}))
-	d.SetTitleText("Draw the ray as .svg or .png, or tell it as .txt")
-	w.showFileDialog(d)
+	w.askTarget("Draw the ray as .svg or .png, or tell it as .txt", "The ray cannot be drawn there", "ray.svg",
+		[]string{".svg", ".png", ".txt"}, func(path string) {
+			if err := writeRay(path, page, r.Text()); err != nil {
+				w.explain("The ray was not drawn", err)
+				return
+			}
+			w.report("Drawn as " + path)
+			w.tell("drawn")
+		})
 }
 
 // writeRay writes the page, or the text, by the ending of the file's name.

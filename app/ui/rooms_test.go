@@ -33,18 +33,18 @@ func press(key fyne.KeyName) *fyne.KeyEvent { return &fyne.KeyEvent{Name: key} }
 func TestCutRoomShowsThePages(t *testing.T) {
 	r := inCut(t, fyne.NewSize(usualWidth, usualHeight))
 	c := &r.cutting
-	if !r.cutBox.Visible() || r.body.Visible() || c.write.Disabled() || c.page.picture.Image == nil {
+	if !r.cutBox.Visible() || r.body.Visible() || c.write.Disabled() || c.pages.page.picture.Image == nil {
 		t.Fatalf("shown %v, to be written %v", r.cutBox.Visible(), !c.write.Disabled())
 	}
 	// The picture has the pixels of the screen: nothing is stretched.
-	if got, want := c.cut.Picture.Rect.Dx(), c.page.picture.Size().Width*r.win.Canvas().Scale(); float32(got) < want-1 || float32(got) > want+1 {
+	if got, want := c.cut.Picture.Rect.Dx(), c.pages.page.picture.Size().Width*r.win.Canvas().Scale(); float32(got) < want-1 || float32(got) > want+1 {
 		t.Errorf("a page %v pixels wide is shown %v wide", got, want)
 	}
-	first := c.page.picture.Image
-	c.page.TypedKey(press(fyne.KeyPageDown))
-	r.until(t, "the second page", func() bool { return c.page.picture.Image != first })
-	if !strings.HasPrefix(c.place.text, "page 2 of ") {
-		t.Errorf("the bar says %q", c.place.text)
+	first := c.pages.page.picture.Image
+	c.pages.page.TypedKey(press(fyne.KeyPageDown))
+	r.until(t, "the second page", func() bool { return c.pages.page.picture.Image != first })
+	if !strings.HasPrefix(c.pages.at.text, "page 2 of ") {
+		t.Errorf("the bar says %q", c.pages.at.text)
 	}
 	// Another plan gives another sheet, the same plan does not.
 	before := c.cut.Sheet
@@ -212,12 +212,12 @@ func TestTellRoomShowsTheReport(t *testing.T) {
 		t.Errorf("shown %v, hint %v", r.tellBox.Visible(), u.hinted.Visible())
 	}
 	r.until(t, "the report", func() bool { return u.tell.Ready() && u.tell.Picture != nil })
-	if !u.paper.Visible() || u.pdf.Disabled() || !strings.HasPrefix(u.place.text, "page 1 of ") {
-		t.Errorf("pages shown %v, %q", u.paper.Visible(), u.place.text)
+	if !u.paper.Visible() || u.pdf.Disabled() || !strings.HasPrefix(u.pages.at.text, "page 1 of ") {
+		t.Errorf("pages shown %v, %q", u.paper.Visible(), u.pages.at.text)
 	}
-	first := u.page.picture.Image
-	u.page.TypedKey(press(fyne.KeyPageDown))
-	r.until(t, "the second page", func() bool { return u.page.picture.Image != first })
+	first := u.pages.page.picture.Image
+	u.pages.page.TypedKey(press(fyne.KeyPageDown))
+	r.until(t, "the second page", func() bool { return u.pages.page.picture.Image != first })
 	if items := r.stonesBeside(); !items[1].Disabled {
 		t.Error("an unchanged plan can be set beside itself")
 	}
@@ -243,8 +243,8 @@ func TestRoomsFitTheWindow(t *testing.T) {
 		c := &r.cutting
 		inside("write", c.write)
 		inside("print", c.print)
-		inside("page scroll", c.page.scroll)
-		inside("turner", c.turner)
+		inside("page scroll", c.pages.page.scroll)
+		inside("turner", c.pages.bar)
 		r.enter(tuneRoom)
 		inside("begin", r.tuning.begin)
 		inside("take", r.tuning.take)

@@ -22,40 +22,25 @@ import (
 // tellBench is the room where the report for a client is put together.
 type tellBench struct {
 	tell       *model.Tell
-	page       *pageView
+	pages      *pageTurner
 	paper      *fyne.Container
 	hint       *wrapped
 	hinted     *fyne.Container
 	trouble    *fyne.Container
 	troubles   *widget.Label
 	bar        *fyne.Container
-	turner     *fyne.Container
-	back       *tipButton
-	next       *tipButton
-	place      *line
 	beside     *chooser
 	letterhead *chooser
 	notes      *wrapped
 	pdf        *widget.Button
 	html       *widget.Button
-	last       int // page that was in view
 }
 
 func (w *window) buildTellRoom() fyne.CanvasObject {
 	t := &w.telling
 	t.tell = model.NewTell(w.do, w.refreshTell, w.bench.MaterialOf)
-	t.page = newPageView(func(by int) { t.tell.Turn(t.tell.Page + by) }, w.strayKey)
-	t.page.onWidth = t.tell.SetWidth
-	t.back = w.tips.button("", theme.NavigateBackIcon(), tipPageBack, func() { t.tell.Turn(t.tell.Page - 1) })
-	t.next = w.tips.button("", theme.NavigateNextIcon(), tipPageNext, func() { t.tell.Turn(t.tell.Page + 1) })
-	t.place = newWord(colourDim, theme.SizeNameText, "")
-	var zoom *widget.Button
-	zoom = widget.NewButton("Whole page", func() {
-		t.page.setWhole(!t.page.whole)
-		zoom.SetText(map[bool]string{true: "Page width", false: "Whole page"}[t.page.whole])
-	})
-	t.turner = container.NewHBox(t.back, t.place, t.next, gap(8), zoom)
-	t.bar = container.NewBorder(nil, nil, nil, t.turner)
+	t.pages = w.newPageTurner(func(by int) { t.tell.Turn(t.tell.Page + by) }, t.tell.SetWidth)
+	t.bar = container.NewBorder(nil, nil, nil, t.pages.bar)
 	t.troubles = widget.NewLabel("")
 	t.troubles.Wrapping = fyne.TextWrapWord
 	t.troubles.Selectable = true
@@ -64,7 +49,7 @@ func (w *window) buildTellRoom() fyne.CanvasObject {
 		container.NewBorder(heading, nil, nil, nil, container.NewVScroll(t.troubles))))
 	t.hint = newWrapped(colourDim, theme.SizeNameText)
 	t.hinted = container.NewCenter(container.NewGridWrap(fyne.NewSize(360, 4*lineHeight()), t.hint))
-	t.paper = container.NewStack(ground(theme.ColorNameBackground), t.page.scroll)
+	t.paper = container.NewStack(ground(theme.ColorNameBackground), t.pages.page.scroll)
 	right := container.NewBorder(pane(container.New(layout.NewCustomPaddedLayout(4, 4, 10, 10), t.bar)), nil, nil, nil,
 		container.NewStack(t.paper, t.hinted, t.trouble))
 	box := container.New(&sideLayout{width: tellWide}, pane(w.tellWishes()), right)
@@ -233,8 +218,8 @@ func (w *window) refreshTell() {
 	setVisible(t.trouble, failed)
 	setVisible(t.hinted, !failed && !some)
 	setVisible(t.paper, !failed && some)
-	if some != t.turner.Visible() {
-		setVisible(t.turner, some)
+	if some != t.pages.bar.Visible() {
+		setVisible(t.pages.bar, some)
 		t.bar.Refresh() // it had no room while it was hidden
 	}
 	if failed {
@@ -249,14 +234,7 @@ func (w *window) refreshTell() {
 	enable(t.html, t.tell.Ready())
 	t.notes.setText(strings.Join(t.tell.Notes(), " "))
 	if some {
-		t.place.setText(fmt.Sprintf("page %d of %d", t.tell.Page+1, t.tell.Pages()))
-		enable(&t.back.Button, t.tell.Page > 0)
-		enable(&t.next.Button, t.tell.Page+1 < t.tell.Pages())
-		t.page.show(t.tell.Picture, t.tell.Shape())
-		if t.last != t.tell.Page {
-			t.last = t.tell.Page
-			t.page.scroll.ScrollToTop()
-		}
+		t.pages.show(t.tell.Page, t.tell.Pages(), t.tell.Picture, t.tell.Shape())
 	}
 	w.refreshProgress()
 	if t.tell.Ready() && t.tell.Picture != nil {
@@ -283,25 +261,7 @@ func (t *tellBench) at() runState {
 // writeReport asks for a file with that ending and writes the report to it.
 func (w *window) writeReport(ending string) {
 	t := &w.telling
-	d := dialog.NewFileSave(func(f fyne.URIWriteCloser, err error) {
-		if err != nil {
-			w.explain("The report cannot be written there", err)
-			return
-		}
-		if f == nil {
-			return // cancelled
-		}
-		path := f.URI().Path()
-		f.Close() // nothing was opened: see writeLater
-		if filepath.Ext(path) == "" {
-			path += ending
-		}
-		w.writeReportTo(path)
-	}, w.win)
-	d.SetFileName(t.tell.FileName(ending))
-	d.SetFilter(storage.NewExtensionFileFilter([]string{ending}))
-	d.SetTitleText("Save the report")
-	w.showFileDialog(d)
+	w.askTarget("Save the report", "The report cannot be written there", t.tell.FileName(ending), []string{ending}, w.writeReportTo)
 }
 
 func (w *window) writeReportTo(path string) {
