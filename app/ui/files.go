@@ -119,13 +119,14 @@ func (w *window) askTarget(title, trouble, name string, endings []string, then f
 	w.showFileDialog(d)
 }
 
+// showFileDialog raises a question for a file where the plan lies.
 func (w *window) showFileDialog(d *dialog.FileDialog) {
 	if folder, err := storage.ListerForURI(storage.NewFileURI(w.folder())); err == nil {
 		d.SetLocation(folder)
 	}
-	size := w.win.Canvas().Size()
-	d.Resize(fyne.NewSize(min(900, size.Width*0.9), min(620, size.Height*0.9)))
 	w.raise(d)
+	size := w.win.Canvas().Size()
+	d.Resize(fyne.NewSize(min(900, size.Width*0.9), min(620, size.Height*0.9))) // before it is raised it has no size to change
 }
 
 // folder is where the plan lies, else where the last one did, else the user's own.
