@@ -19,6 +19,9 @@ type listed struct {
 	TestImports, XTestImports []string
 
 	Path, Version string
+
+	Export, Dir string // compiled, and source
+	GoFiles     []string
 }
 
 func goList(t *testing.T, args ...string) []listed {

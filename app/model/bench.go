@@ -10,6 +10,7 @@ import (
 	"slices"
 	"strings"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 )
@@ -20,7 +21,8 @@ type Bench struct {
 	Doc      *Document
 	Look     *Look
 	Stock    *gems.Library // of all materials at hand
-	Selected string        // name of the tier picked in the list or on the solid; may be empty
+	words    *words.Words
+	Selected string // name of the tier picked in the list or on the solid; may be empty
 
 	solve    func(*facets.Plan) (*facets.Stone, error)
 	do       func(func())
@@ -40,6 +42,9 @@ func NewBench(doc *Document, do func(func()), onLook func(Change), onPlan func()
 	b.Look = look
 	return b, nil
 }
+
+// SetWords has the bench and the maps speak a language; before, it is English.
+func (b *Bench) SetWords(w *words.Words) { b.words, b.Look.words = w, w }
 
 // Begin asks for the maps of the plan.
 func (b *Bench) Begin() { b.show() }
@@ -184,7 +189,7 @@ func (b *Bench) SetAngle(tier int, angle facets.Angle, merge bool) error {
 	if merge {
 		key = "angle of " + t.Name
 	}
-	b.Doc.Edit("angle of "+t.Name, key, func(p *facets.Plan) {
+	b.Doc.Edit(words.Later("angle of %s", t.Name), key, func(p *facets.Plan) {
 		p.Tiers[tier].Angle, p.Tiers[tier].HasAngle = angle, true
 	})
 	b.show()
@@ -203,7 +208,7 @@ func (b *Bench) SetWidth(mm float64) error {
 	if mm == b.Doc.Plan().WidthMM {
 		return nil
 	}
-	b.Doc.Edit("width", "", func(p *facets.Plan) { p.WidthMM = mm })
+	b.Doc.Edit(words.Later("width"), "", func(p *facets.Plan) { p.WidthMM = mm })
 	b.show()
 	return nil
 }
@@ -213,7 +218,7 @@ func (b *Bench) SetMaterial(m *gems.Material) {
 	if b.Doc.Plan().Material.Key == m.Key {
 		return
 	}
-	b.Doc.Edit("material", "", func(p *facets.Plan) { p.Material = facets.MaterialRef{Key: m.Key} })
+	b.Doc.Edit(words.Later("material"), "", func(p *facets.Plan) { p.Material = facets.MaterialRef{Key: m.Key} })
 	b.tiers.forget()
 	b.show()
 }
@@ -226,7 +231,7 @@ func (b *Bench) SetAround(column int, a Around) {
 }
 
 // Adopt takes over a plan that was found by other means, as one step.
-func (b *Bench) Adopt(name string, plan *facets.Plan) {
+func (b *Bench) Adopt(name words.Text, plan *facets.Plan) {
 	b.Doc.Edit(name, "", func(p *facets.Plan) { *p = *plan })
 	b.show()
 }

@@ -155,7 +155,7 @@ func TestEditsAreNamedAndUndone(t *testing.T) {
 			if !ok {
 				break
 			}
-			names = append(names, name)
+			names = append(names, name.String())
 			p.Undo()
 		}
 		if want := []string{"material", "width", "angle of P1"}; !slices.Equal(names, want) {

@@ -6,6 +6,7 @@ import (
 	"time"
 
 	"pavilight/app/disk"
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
@@ -35,7 +36,7 @@ func (d *Document) Plan() *facets.Plan { return d.history.present() }
 // Edit changes the plan as one step that the Edit menu calls name. Steps that
 // follow each other with the same merge key, such as those of one drag, become
 // one; an empty key never merges.
-func (d *Document) Edit(name, merge string, change func(*facets.Plan)) {
+func (d *Document) Edit(name words.Text, merge string, change func(*facets.Plan)) {
 	plan := d.Plan().Clone()
 	change(plan)
 	d.history.push(name, merge, plan)
@@ -51,10 +52,10 @@ func (d *Document) Undo() bool { return d.history.undo() }
 func (d *Document) Redo() bool { return d.history.redo() }
 
 // UndoName names the step that Undo takes back, false if there is none.
-func (d *Document) UndoName() (string, bool) { return d.history.undoName() }
+func (d *Document) UndoName() (words.Text, bool) { return d.history.undoName() }
 
 // RedoName names the step that Redo brings back, false if there is none.
-func (d *Document) RedoName() (string, bool) { return d.history.redoName() }
+func (d *Document) RedoName() (words.Text, bool) { return d.history.redoName() }
 
 // Modified reports whether the plan differs from its file.
 func (d *Document) Modified() bool { return d.history.modified() }

@@ -1,5 +1,7 @@
 package model
 
+import "pavilight/app/words"
+
 // history is what undo and redo walk along: the states of a document, each with
 // the name of the step that led to it. The zero value holds nothing; start with
 // newHistory.
@@ -10,8 +12,8 @@ type history[T any] struct {
 }
 
 type step[T any] struct {
-	name  string // what was done, as the Edit menu says it
-	merge string // steps with the same key, not empty, are one step
+	name  words.Text // what was done, as the Edit menu says it
+	merge string     // steps with the same key, not empty, are one step
 	state T
 }
 
@@ -29,7 +31,7 @@ func newHistory[T any](state T, saved bool) history[T] {
 func (h *history[T]) present() T { return h.steps[h.at].state }
 
 // push makes state the present one. What could be redone is forgotten.
-func (h *history[T]) push(name, merge string, state T) {
+func (h *history[T]) push(name words.Text, merge string, state T) {
 	if h.saved > h.at {
 		h.saved = -1
 	}
@@ -52,17 +54,17 @@ func (h *history[T]) push(name, merge string, state T) {
 func (h *history[T]) settle() { h.steps[h.at].merge = "" }
 
 // undoName names the step that undo takes back, false if there is none.
-func (h *history[T]) undoName() (string, bool) {
+func (h *history[T]) undoName() (words.Text, bool) {
 	if h.at == 0 {
-		return "", false
+		return words.Text{}, false
 	}
 	return h.steps[h.at].name, true
 }
 
 // redoName names the step that redo brings back, false if there is none.
-func (h *history[T]) redoName() (string, bool) {
+func (h *history[T]) redoName() (words.Text, bool) {
 	if h.at+1 >= len(h.steps) {
-		return "", false
+		return words.Text{}, false
 	}
 	return h.steps[h.at+1].name, true
 }

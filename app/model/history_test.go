@@ -1,18 +1,19 @@
 package model
 
 import (
-	"fmt"
 	"math/rand/v2"
 	"testing"
+
+	"pavilight/app/words"
 )
 
 func TestHistoryMergesADragIntoOneStep(t *testing.T) {
 	h := newHistory(41.5, true)
 	for _, v := range []float64{41.6, 41.7, 41.8} {
-		h.push("angle of P1", "P1", v)
+		h.push(words.Later("angle of P1"), "P1", v)
 	}
 	h.settle()
-	h.push("angle of P1", "P1", 42)
+	h.push(words.Later("angle of P1"), "P1", 42)
 	if h.undo(); h.present() != 41.8 {
 		t.Fatalf("after one undo %v, want 41.8, where the drag ended", h.present())
 	}
@@ -22,16 +23,16 @@ func TestHistoryMergesADragIntoOneStep(t *testing.T) {
 	if h.undo() {
 		t.Error("undo beyond the first state")
 	}
-	if name, ok := h.redoName(); !ok || name != "angle of P1" {
+	if name, ok := h.redoName(); !ok || name.String() != "angle of P1" {
 		t.Errorf("redo is named %q, %v", name, ok)
 	}
 }
 
 func TestHistoryNeverMergesIntoTheSavedState(t *testing.T) {
 	h := newHistory(1, true)
-	h.push("a", "k", 2)
+	h.push(words.Later("a"), "k", 2)
 	h.markSaved()
-	h.push("a", "k", 3)
+	h.push(words.Later("a"), "k", 3)
 	if !h.modified() {
 		t.Error("a step after saving is not marked as modified")
 	}
@@ -42,10 +43,10 @@ func TestHistoryNeverMergesIntoTheSavedState(t *testing.T) {
 
 func TestHistoryForgetsTheSavedStateWhenItIsCutOff(t *testing.T) {
 	h := newHistory(1, true)
-	h.push("a", "", 2)
+	h.push(words.Later("a"), "", 2)
 	h.markSaved()
 	h.undo()
-	h.push("b", "", 3) // the saved state can no longer be reached
+	h.push(words.Later("b"), "", 3) // the saved state can no longer be reached
 	for h.undo() {
 		if !h.modified() {
 			t.Error("a state that differs from the file counts as saved")
@@ -61,7 +62,7 @@ func TestHistoryForgetsTheSavedStateWhenItIsCutOff(t *testing.T) {
 func TestHistoryIsBounded(t *testing.T) {
 	h := newHistory(0, true)
 	for i := 1; i <= 3*mostSteps; i++ {
-		h.push(fmt.Sprint(i), "", i)
+		h.push(words.Later("%d", i), "", i)
 	}
 	if len(h.steps) != mostSteps || h.present() != 3*mostSteps || !h.modified() {
 		t.Errorf("%d steps, at %d, modified %v", len(h.steps), h.present(), h.modified())
@@ -78,7 +79,7 @@ func TestHistoryAgainstPlainModel(t *testing.T) {
 		for i := 1; i < 60; i++ {
 			switch rng.IntN(3) {
 			case 0:
-				h.push("step", "", i)
+				h.push(words.Later("step"), "", i)
 				states = append(states[:at+1], i)
 				at++
 			case 1:

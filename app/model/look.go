@@ -10,6 +10,7 @@ import (
 	"time"
 
 	"pavilight/app/picture"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/trace"
@@ -56,6 +57,7 @@ type Look struct {
 
 	do       func(func())
 	onChange func(Change)
+	words    *words.Words
 	trace    tracing
 	settings trace.Settings
 	light    string       // that colour is seen under

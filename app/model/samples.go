@@ -3,21 +3,28 @@ package model
 import (
 	"slices"
 	"strings"
+
+	"pavilight/app/words"
 )
 
 // SampleGroup is bundled plans of like outlines.
 type SampleGroup struct {
-	Outline string
+	Outline words.Key
 	Samples []Sample
 }
 
 // Sample is one bundled plan.
 type Sample struct{ Label, File string }
 
-// sampleOutlines are the groups in the order of the menu, and the first words of the
-// names of the files that belong to each. "Other outlines" takes what none names.
-func sampleOutlines() []struct{ outline, words string } {
-	return []struct{ outline, words string }{
+// sampleOutline is a group, and the first words of the names of its files.
+type sampleOutline struct {
+	outline words.Key
+	words   string
+}
+
+// sampleOutlines are the groups in the order of the menu. "Other outlines" takes what none names.
+func sampleOutlines() []sampleOutline {
+	return []sampleOutline{
 		{"Round", "round"},
 		{"Oval, pear, marquise", "oval pear marquise"},
 		{"Cushion, square", "cushion square"},

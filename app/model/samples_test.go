@@ -53,7 +53,7 @@ func TestSampleGroups(t *testing.T) {
 				"Cushion, square":      ratio < 1.4,
 				"Five and six sides":   ratio < 1.2,
 			}
-			if fit, judged := fits[g.Outline]; judged && !fit {
+			if fit, judged := fits[string(g.Outline)]; judged && !fit {
 				t.Errorf("%s under %s: length over width %.3f, %d sides", s.File, g.Outline, ratio, sides)
 			}
 		}

@@ -8,6 +8,7 @@ import (
 	"strconv"
 	"strings"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
@@ -166,7 +167,7 @@ func parseCorners(text string) ([][]facets.Mark, error) {
 // EditTier puts what the form holds in a tier's place. A new name is followed
 // wherever the plan speaks of the tier.
 func (b *Bench) EditTier(number int, form TierForm) error {
-	return b.change("tier "+form.Name, func(p *facets.Plan) error {
+	return b.change(words.Later("tier %s", form.Name), func(p *facets.Plan) error {
 		t := &p.Tiers[number]
 		before := t.Name
 		if err := form.fill(t); err != nil {
@@ -182,7 +183,7 @@ func (b *Bench) EditTier(number int, form TierForm) error {
 
 // InsertTier puts a new tier before the one of that number, or last.
 func (b *Bench) InsertTier(number int, form TierForm) error {
-	return b.change("new tier "+form.Name, func(p *facets.Plan) error {
+	return b.change(words.Later("new tier %s", form.Name), func(p *facets.Plan) error {
 		var t facets.Tier
 		if err := form.fill(&t); err != nil {
 			return err
@@ -195,7 +196,7 @@ func (b *Bench) InsertTier(number int, form TierForm) error {
 // RemoveTier takes a tier out of the plan.
 func (b *Bench) RemoveTier(number int) error {
 	name := b.Doc.Plan().Tiers[number].Name
-	return b.change("remove tier "+name, func(p *facets.Plan) error {
+	return b.change(words.Later("remove tier %s", name), func(p *facets.Plan) error {
 		if t := p.Tiers[number].Transfer; t != nil && number+1 < len(p.Tiers) && p.Tiers[number+1].Transfer == nil {
 			p.Tiers[number+1].Transfer = t // the stone is still turned at this place
 		}
@@ -215,7 +216,7 @@ func (b *Bench) MoveTier(number, by int) error {
 		return nil
 	}
 	name := b.Doc.Plan().Tiers[number].Name
-	return b.change("order of tier "+name, func(p *facets.Plan) error {
+	return b.change(words.Later("order of tier %s", name), func(p *facets.Plan) error {
 		a, c := &p.Tiers[number], &p.Tiers[to]
 		*a, *c = *c, *a
 		a.Transfer, c.Transfer = c.Transfer, a.Transfer
@@ -224,7 +225,7 @@ func (b *Bench) MoveTier(number, by int) error {
 }
 
 // change makes a step of what do does to the plan, or none where it fails.
-func (b *Bench) change(name string, do func(*facets.Plan) error) error {
+func (b *Bench) change(name words.Text, do func(*facets.Plan) error) error {
 	plan := b.Doc.Plan().Clone()
 	if err := do(plan); err != nil {
 		return err

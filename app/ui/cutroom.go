@@ -37,8 +37,10 @@ type cutBench struct {
 
 func (w *window) buildCutRoom() fyne.CanvasObject {
 	c := &w.cutting
-	machines, _ := sheet.UserMachines() // without a folder there is the plain machine
-	c.cut = model.NewCut(machines, w.do, w.refreshCut)
+	if c.cut == nil {
+		machines, _ := sheet.UserMachines() // without a folder there is the plain machine
+		c.cut = model.NewCut(machines, w.do, w.refreshCut)
+	}
 	c.pages = w.newPageTurner(func(by int) { c.cut.Turn(c.cut.Page + by) }, c.cut.SetWidth)
 	c.film = newFilmView(c.cut, w.do, w.strayKey)
 	for k, name := range []string{"Pages", "Step by step"} {

@@ -8,6 +8,8 @@ import (
 	"fyne.io/fyne/v2/driver/desktop"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
+
+	"pavilight/app/words"
 )
 
 // room is one of the four verbs of the job.
@@ -21,7 +23,7 @@ const (
 	rooms
 )
 
-func (r room) String() string { return [...]string{"Look", "Tune", "Cut", "Tell"}[r] }
+func (r room) name() words.Key { return [...]words.Key{"Look", "Tune", "Cut", "Tell"}[r] }
 
 // roomButton leads to a room; the one that is open is underlined.
 type roomButton struct {

@@ -5,6 +5,8 @@ import (
 	"slices"
 
 	"fyne.io/fyne/v2"
+
+	"pavilight/app/words"
 )
 
 // fileMemory is what the program remembers from one run to the next. Everything
@@ -21,6 +23,7 @@ const (
 	stonePaneKey = "view.stone"
 	recentKey    = "files.recent"
 	hintsKey     = "hints.seen"
+	languageKey  = "view.language"
 )
 
 // The size of the window when it is opened for the first time.
@@ -51,6 +54,22 @@ func (m fileMemory) brightness() brightness {
 		return b
 	}
 	return asSystem
+}
+
+// language is the code of the language that the user chose, "" for that of the system.
+func (m fileMemory) language() string {
+	if code := m.prefs.String(languageKey); slices.Contains(words.Languages(), code) {
+		return code
+	}
+	return ""
+}
+
+// words are those of the language that the window speaks; system is that of the system.
+func (m fileMemory) words(system string) *words.Words {
+	if code := m.language(); code != "" {
+		return words.In(code)
+	}
+	return words.In(system)
 }
 
 func (m fileMemory) textScale() float32 { return float32(m.prefs.FloatWithFallback(scaleKey, 1)) }

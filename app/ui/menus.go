@@ -10,6 +10,7 @@ import (
 	"fyne.io/fyne/v2/driver/desktop"
 
 	"pavilight/app/model"
+	"pavilight/app/words"
 	"pavilight/testdata"
 )
 
@@ -34,69 +35,86 @@ func controlShift(key fyne.KeyName) fyne.Shortcut {
 	return &desktop.CustomShortcut{KeyName: key, Modifier: fyne.KeyModifierShortcutDefault | fyne.KeyModifierShift}
 }
 
-func item(label string, shortcut fyne.Shortcut, do func()) *fyne.MenuItem {
-	i := fyne.NewMenuItem(label, do)
+// item returns an item of a menu; shortcut may be nil.
+func (w *window) item(label words.Key, shortcut fyne.Shortcut, do func()) *fyne.MenuItem {
+	i := fyne.NewMenuItem(w.words.Say(label), do)
 	i.Shortcut = shortcut
 	return i
 }
 
 func (w *window) buildMenu() *fyne.MainMenu {
 	m := &w.menu
-	m.save = item("Save", control(fyne.KeyS), w.save)
-	m.recent = fyne.NewMenuItem("Open recent", nil)
+	m.save = w.item("Save", control(fyne.KeyS), w.save)
+	m.recent = w.item("Open recent", nil, nil)
 	m.recent.ChildMenu = fyne.NewMenu("")
-	samples := fyne.NewMenuItem("Open sample", nil)
+	samples := w.item("Open sample", nil, nil)
 	samples.ChildMenu = fyne.NewMenu("", w.sampleItems()...)
-	quit := item("Quit", control(fyne.KeyQ), w.requestClose)
+	quit := w.item("Quit", control(fyne.KeyQ), w.requestClose)
 	quit.IsQuit = true
-	file := fyne.NewMenu("File",
-		item("Open…", control(fyne.KeyO), w.openDialog),
+	file := fyne.NewMenu(w.words.Say("File"),
+		w.item("Open…", control(fyne.KeyO), w.openDialog),
 		m.recent, samples,
 		fyne.NewMenuItemSeparator(),
 		m.save,
-		item("Save as…", controlShift(fyne.KeyS), w.saveAs),
+		w.item("Save as…", controlShift(fyne.KeyS), w.saveAs),
 		fyne.NewMenuItemSeparator(),
-		item("Print the sheet…", control(fyne.KeyP), w.printSheet),
+		w.item("Print the sheet…", control(fyne.KeyP), w.printSheet),
 		fyne.NewMenuItemSeparator(),
 		quit)
 
-	m.undo = item("Undo", &fyne.ShortcutUndo{}, w.undo)
-	m.redo = item("Redo", &fyne.ShortcutRedo{}, w.redo)
+	m.undo = w.item("Undo", &fyne.ShortcutUndo{}, w.undo)
+	m.redo = w.item("Redo", &fyne.ShortcutRedo{}, w.redo)
 	m.tier = w.tierItems()
-	edit := fyne.NewMenu("Edit", append([]*fyne.MenuItem{m.undo, m.redo, fyne.NewMenuItemSeparator()}, m.tier...)...)
+	edit := fyne.NewMenu(w.words.Say("Edit"), append([]*fyne.MenuItem{m.undo, m.redo, fyne.NewMenuItemSeparator()}, m.tier...)...)
 
 	doors := make([]*fyne.MenuItem, 0, rooms)
 	for r, key := range []fyne.KeyName{fyne.Key1, fyne.Key2, fyne.Key3, fyne.Key4} {
-		doors = append(doors, item(room(r).String(), control(key), func() { w.enter(room(r)) }))
+		doors = append(doors, w.item(room(r).name(), control(key), func() { w.enter(room(r)) }))
 	}
-	m.plan = item("Plan at the left", control(fyne.KeyL), func() { w.fold(planPaneKey) })
-	m.stone = item("Stone at the right", control(fyne.KeyR), func() { w.fold(stonePaneKey) })
+	m.plan = w.item("Plan at the left", control(fyne.KeyL), func() { w.fold(planPaneKey) })
+	m.stone = w.item("Stone at the right", control(fyne.KeyR), func() { w.fold(stonePaneKey) })
 	m.themes = map[brightness]*fyne.MenuItem{}
-	theme := fyne.NewMenuItem("Theme", nil)
+	theme := w.item("Theme", nil, nil)
 	theme.ChildMenu = fyne.NewMenu("")
 	for _, b := range []brightness{asSystem, inLight, inDark} {
-		label := map[brightness]string{asSystem: "As the system", inLight: "Light", inDark: "Dark"}[b]
-		m.themes[b] = fyne.NewMenuItem(label, func() { w.setTheme(b) })
+		label := map[brightness]words.Key{asSystem: "As the system", inLight: "Light|theme", inDark: "Dark"}[b]
+		m.themes[b] = w.item(label, nil, func() { w.setTheme(b) })
 		theme.ChildMenu.Items = append(theme.ChildMenu.Items, m.themes[b])
 	}
-	view := fyne.NewMenu("View", append(doors,
+	view := fyne.NewMenu(w.words.Say("View"), append(doors,
 		fyne.NewMenuItemSeparator(),
 		m.plan, m.stone,
-		item("Enlarge a map, or all six", control(fyne.KeyM), w.enlarge),
+		w.item("Enlarge a map, or all six", control(fyne.KeyM), w.enlarge),
 		fyne.NewMenuItemSeparator(),
-		item("Larger text", control(fyne.KeyEqual), func() { w.scaleText(1) }),
-		item("Smaller text", control(fyne.KeyMinus), func() { w.scaleText(-1) }),
-		theme,
+		w.item("Larger text", control(fyne.KeyEqual), func() { w.scaleText(1) }),
+		w.item("Smaller text", control(fyne.KeyMinus), func() { w.scaleText(-1) }),
+		theme, w.languageItem(),
 		fyne.NewMenuItemSeparator(),
-		item("Stop or go on", control(fyne.KeyPeriod), w.stopOrResume))...)
+		w.item("Stop or go on", control(fyne.KeyPeriod), w.stopOrResume))...)
 
-	help := fyne.NewMenu("Help",
-		fyne.NewMenuItem("First steps", w.firstSteps),
-		fyne.NewMenuItem("Copy diagnostics", w.copyDiagnostics),
+	help := fyne.NewMenu(w.words.Say("Help"),
+		w.item("First steps", nil, w.firstSteps),
+		w.item("Copy diagnostics", nil, w.copyDiagnostics),
 		fyne.NewMenuItemSeparator(),
-		fyne.NewMenuItem("About Pavilight", w.about))
+		w.item("About Pavilight", nil, w.about))
 	m.main = fyne.NewMainMenu(file, edit, view, help)
 	return m.main
+}
+
+// languageItem lists the languages, each in its own words.
+func (w *window) languageItem() *fyne.MenuItem {
+	choose := w.item("Language", nil, nil)
+	choose.ChildMenu = fyne.NewMenu("")
+	for _, code := range append([]string{""}, words.Languages()...) {
+		name := words.NameOf(code)
+		if code == "" {
+			name = w.words.Say("As the system")
+		}
+		one := fyne.NewMenuItem(name, func() { w.setLanguage(code) })
+		one.Checked = code == w.files.language()
+		choose.ChildMenu.Items = append(choose.ChildMenu.Items, one)
+	}
+	return choose
 }
 
 // sampleItems lists the bundled plans, a menu for each kind of outline.
@@ -107,7 +125,7 @@ func (w *window) sampleItems() []*fyne.MenuItem {
 	}
 	var groups []*fyne.MenuItem
 	for _, g := range model.SampleGroups(files) {
-		group := fyne.NewMenuItem(g.Outline, nil)
+		group := w.item(g.Outline, nil, nil)
 		group.ChildMenu = fyne.NewMenu("")
 		for _, s := range g.Samples {
 			group.ChildMenu.Items = append(group.ChildMenu.Items, fyne.NewMenuItem(s.Label, func() {
@@ -126,8 +144,9 @@ func (w *window) refreshMenu() {
 	if m.main == nil {
 		return
 	}
-	undo, canUndo := w.bench.Doc.UndoName()
-	redo, canRedo := w.bench.Doc.RedoName()
+	undoStep, canUndo := w.bench.Doc.UndoName()
+	redoStep, canRedo := w.bench.Doc.RedoName()
+	undo, redo := w.words.Say("Undo %s", undoStep), w.words.Say("Redo %s", redoStep)
 	wide := w.win.Canvas().Size().Width
 	plan, stone := w.panes.shown(wide)
 	recent := w.files.recent()
@@ -137,10 +156,10 @@ func (w *window) refreshMenu() {
 		return
 	}
 	m.shown = shown
-	m.undo.Label, m.undo.Disabled = strings.TrimSpace("Undo "+undo), !canUndo
-	m.redo.Label, m.redo.Disabled = strings.TrimSpace("Redo "+redo), !canRedo
+	m.undo.Label, m.undo.Disabled = strings.TrimSpace(undo), !canUndo
+	m.redo.Label, m.redo.Disabled = strings.TrimSpace(redo), !canRedo
 	for _, i := range m.tier {
-		i.Disabled = !picked && i.Label != "New tier…"
+		i.Disabled = !picked && i.Label != w.words.Say("New tier…")
 	}
 	m.save.Disabled = !w.bench.Doc.Modified() && w.bench.Doc.Path != ""
 	m.plan.Checked, m.stone.Checked = plan, stone
@@ -158,7 +177,7 @@ func (w *window) refreshMenu() {
 func (w *window) recentItem(path string) *fyne.MenuItem {
 	label := filepath.Base(path) + "  –  " + filepath.Dir(path)
 	if !exists(path) {
-		return fyne.NewMenuItem(label+"  (gone: forget it)", func() {
+		return fyne.NewMenuItem(w.words.Say("%s  (gone: forget it)", label), func() {
 			w.files.forgetRecent(path)
 			w.refreshMenu()
 		})

@@ -165,7 +165,7 @@ func TestTuneRoomFindsAndTakes(t *testing.T) {
 	if got := r.angle(t, "P1"); got != want || r.room != lookRoom {
 		t.Errorf("taken: P1 at %v, want %v", got, want)
 	}
-	if name, ok := r.bench.Doc.UndoName(); !ok || name != "tuned angles" {
+	if name, ok := r.bench.Doc.UndoName(); !ok || name.String() != "tuned angles" {
 		t.Errorf("to be undone: %q", name)
 	}
 	r.undo()

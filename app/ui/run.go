@@ -13,6 +13,7 @@ import (
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/app"
+	"fyne.io/fyne/v2/lang"
 	"fyne.io/fyne/v2/storage/repository"
 
 	"pavilight/app/stock"
@@ -49,7 +50,7 @@ func Run(ctx context.Context, o Options) error {
 	if err != nil {
 		return err
 	}
-	w, err := newWindow(a, doc, watched(post), stages(started))
+	w, err := newWindow(a, doc, lang.SystemLocale().LanguageString(), watched(post), stages(started))
 	if err != nil {
 		return err
 	}

@@ -93,8 +93,8 @@ func (w *window) tellPlaces() {
 	}
 	tell("solid", w.solid, 0.5)
 	tell("strip", w.grid.strip, 0.5)
-	for _, d := range w.doors {
-		tell("room "+d.text, d, 0.5)
+	for r, d := range w.doors {
+		tell("room "+string(room(r).name()), d, 0.5)
 	}
 	for name, b := range w.asked {
 		tell("answer "+name, b, 0.5)

@@ -38,7 +38,9 @@ type tellBench struct {
 
 func (w *window) buildTellRoom() fyne.CanvasObject {
 	t := &w.telling
-	t.tell = model.NewTell(w.do, w.refreshTell, w.bench.MaterialOf)
+	if t.tell == nil {
+		t.tell = model.NewTell(w.do, w.refreshTell, w.bench.MaterialOf)
+	}
 	t.pages = w.newPageTurner(func(by int) { t.tell.Turn(t.tell.Page + by) }, t.tell.SetWidth)
 	t.bar = container.NewBorder(nil, nil, nil, t.pages.bar)
 	t.troubles = widget.NewLabel("")

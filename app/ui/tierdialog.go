@@ -166,10 +166,10 @@ func (w *window) selecting(tier string, err error) error {
 // click with the other button.
 func (w *window) tierItems() []*fyne.MenuItem {
 	return []*fyne.MenuItem{
-		item("Edit tier…", control(fyne.KeyE), w.editTier),
-		item("New tier…", control(fyne.KeyN), w.addTier),
-		item("Cut tier earlier", control(fyne.KeyUp), func() { w.moveTier(-1) }),
-		item("Cut tier later", control(fyne.KeyDown), func() { w.moveTier(1) }),
-		item("Remove tier", control(fyne.KeyDelete), w.removeTier),
+		w.item("Edit tier…", control(fyne.KeyE), w.editTier),
+		w.item("New tier…", control(fyne.KeyN), w.addTier),
+		w.item("Cut tier earlier", control(fyne.KeyUp), func() { w.moveTier(-1) }),
+		w.item("Cut tier later", control(fyne.KeyDown), func() { w.moveTier(1) }),
+		w.item("Remove tier", control(fyne.KeyDelete), w.removeTier),
 	}
 }

@@ -9,6 +9,8 @@ import (
 	"fyne.io/fyne/v2/driver/desktop"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
+
+	"pavilight/app/words"
 )
 
 // tipDelay is how long the pointer rests on a control before its tip comes.
@@ -21,13 +23,14 @@ type tipLayer struct {
 	plate *canvas.Rectangle
 	text  *wrapped
 	do    func(func()) // hands work to the toolkit's goroutine
+	words *words.Words
 	delay time.Duration
 	over  fyne.CanvasObject // the control that the pointer rests on; nil for none
 	visit int               // counts the controls that it came to
 }
 
-func newTipLayer(do func(func())) *tipLayer {
-	l := &tipLayer{do: do, delay: tipDelay, plate: canvas.NewRectangle(color.Transparent),
+func newTipLayer(do func(func()), in *words.Words) *tipLayer {
+	l := &tipLayer{do: do, words: in, delay: tipDelay, plate: canvas.NewRectangle(color.Transparent),
 		text: newWrapped(theme.ColorNameForeground, theme.SizeNameCaptionText)}
 	l.plate.CornerRadius, l.plate.StrokeWidth = 4, 1
 	l.box = &fyne.Container{Objects: []fyne.CanvasObject{l.plate, l.text}} // placed by hand
@@ -98,12 +101,12 @@ func (l *tipLayer) show(over fyne.CanvasObject, words string) {
 // tells nothing.
 type tip struct {
 	layer *tipLayer
-	words string
+	words words.Key
 }
 
 func (t *tip) enter(over fyne.CanvasObject) {
 	if t.layer != nil {
-		t.layer.enter(over, t.words)
+		t.layer.enter(over, t.layer.words.Say(t.words))
 	}
 }
 
@@ -120,9 +123,9 @@ type tipButton struct {
 }
 
 // button returns a button with a tip; icon may be nil.
-func (l *tipLayer) button(label string, icon fyne.Resource, words string, tapped func()) *tipButton {
+func (l *tipLayer) button(label words.Key, icon fyne.Resource, words words.Key, tapped func()) *tipButton {
 	b := &tipButton{tip: tip{l, words}}
-	b.Text, b.Icon, b.OnTapped = label, icon, tapped
+	b.Text, b.Icon, b.OnTapped = l.words.Say(label), icon, tapped
 	b.ExtendBaseWidget(b)
 	return b
 }

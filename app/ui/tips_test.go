@@ -7,6 +7,7 @@ import (
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/test"
 
+	"pavilight/app/words"
 	"pavilight/testdata"
 )
 
@@ -21,7 +22,7 @@ func TestTipsComeAndGo(t *testing.T) {
 	for _, tt := range []struct {
 		name  string
 		over  fyne.CanvasObject
-		words string
+		words words.Key
 	}{
 		{"field of the view", r.head, tipHead},
 		{"button in the corner", r.stop, tipStop},
@@ -32,7 +33,7 @@ func TestTipsComeAndGo(t *testing.T) {
 	} {
 		over(tt.over)
 		r.until(t, "the tip of the "+tt.name, r.tips.plate.Visible)
-		if r.tips.text.text != tt.words {
+		if r.tips.text.text != r.words.Say(tt.words) {
 			t.Errorf("%s: the tip says %q", tt.name, r.tips.text.text)
 		}
 		at, size, whole := r.tips.plate.Position(), r.tips.plate.Size(), r.tips.box.Size()
@@ -46,7 +47,7 @@ func TestTipsComeAndGo(t *testing.T) {
 	}
 
 	// Gone before its time, it does not come at all; nor over an open menu.
-	r.tips.enter(r.head, tipHead)
+	r.tips.enter(r.head, r.words.Say(tipHead))
 	r.tips.leave()
 	time.Sleep(20 * time.Millisecond)
 	r.drain()

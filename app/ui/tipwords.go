@@ -1,5 +1,7 @@
 package ui
 
+import "pavilight/app/words"
+
 // The words of all tips, in one place. A tip says what a control does, and which keys
 // do the same; it does not repeat its label.
 const (
@@ -37,8 +39,8 @@ const (
 )
 
 // tipRoom says what a room is for.
-func tipRoom(r room) string {
-	return [...]string{
+func tipRoom(r room) words.Key {
+	return [...]words.Key{
 		"See where the light goes (Ctrl+1)",
 		"Search for better angles (Ctrl+2)",
 		"The sheet to cut by (Ctrl+3)",

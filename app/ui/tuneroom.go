@@ -16,6 +16,7 @@ import (
 	"fyne.io/fyne/v2/widget"
 
 	"pavilight/app/model"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/trace"
@@ -65,7 +66,9 @@ const tuneWide = 330
 
 func (w *window) buildTuneRoom() fyne.CanvasObject {
 	t := &w.tuning
-	t.tune = model.NewTune(w.do, w.refreshTune)
+	if t.tune == nil {
+		t.tune = model.NewTune(w.do, w.refreshTune)
+	}
 	question := w.tuneQuestion()
 	t.begin = widget.NewButton("Search", w.beginTune)
 	t.begin.Importance = widget.HighImportance
@@ -374,9 +377,9 @@ func (w *window) takeTuned() {
 	if !ok {
 		return
 	}
-	name := "tuned angles"
+	name := words.Later("tuned angles")
 	if t.tune.Moved != nil {
-		name = "move to " + t.tune.Moved.To.Name
+		name = words.Later("move to %s", t.tune.Moved.To.Name)
 	}
 	w.bench.Adopt(name, plan)
 	w.enter(lookRoom)

@@ -15,6 +15,7 @@ import (
 
 	"pavilight/app/model"
 	"pavilight/app/solid"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/trace"
 )
@@ -22,11 +23,13 @@ import (
 // window is the program's one window. All of its methods run on the toolkit's
 // goroutine.
 type window struct {
-	app   fyne.App
-	win   fyne.Window
-	bench *model.Bench
-	do    func(func())       // hands work to the toolkit's goroutine
-	tell  func(stage string) // of interest to scripts that drive the window
+	app    fyne.App
+	win    fyne.Window
+	bench  *model.Bench
+	words  *words.Words       // in which the window speaks
+	system string             // locale of the system
+	do     func(func())       // hands work to the toolkit's goroutine
+	tell   func(stage string) // of interest to scripts that drive the window
 
 	// header
 	title    *line
@@ -83,16 +86,21 @@ type window struct {
 	asked   map[string]*widget.Button // answers of the question that is open, by their label
 }
 
-// newWindow builds the window around a bench; nothing is shown yet. do hands work to
-// the toolkit's goroutine, in order, without waiting for it.
-func newWindow(a fyne.App, doc *model.Document, do func(func()), tell func(string)) (*window, error) {
-	w := &window{app: a, do: do, tell: tell, stages: map[string]bool{}}
+// newWindow builds the window around a bench; nothing is shown yet. system is the locale of
+// the system. do hands work to the toolkit's goroutine, in order, without waiting for it.
+func newWindow(a fyne.App, doc *model.Document, system string, do func(func()), tell func(string)) (*window, error) {
+	w := &window{app: a, do: do, tell: tell, system: system, stages: map[string]bool{}}
+	w.files = fileMemory{a.Preferences()}
+	w.words = w.files.words(system)
 	bench, err := model.NewBench(doc, do, w.onLook, w.onPlan)
 	if err != nil {
 		return nil, err
 	}
 	w.bench = bench
-	w.files = fileMemory{a.Preferences()}
+	w.bench.SetWords(w.words)
+	if w.files.language() != "" {
+		w.speakToolkit()
+	}
 	w.win = a.NewWindow("Pavilight")
 	w.build()
 	w.win.SetContent(w.content())
@@ -106,7 +114,7 @@ func newWindow(a fyne.App, doc *model.Document, do func(func()), tell func(strin
 }
 
 func (w *window) build() {
-	w.tips = newTipLayer(w.do)
+	w.tips = newTipLayer(w.do, w.words)
 	w.title = newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, "").bold()
 	w.material = newChooser(theme.SizeNameText, nil)
 	w.material.opens = w.chooseMaterial
@@ -115,7 +123,7 @@ func (w *window) build() {
 	w.width.commit, w.width.trouble = w.bench.SetWidth, w.say
 	w.weight = newWord(colourDim, theme.SizeNameText, "")
 	for r := range rooms {
-		w.doors[r] = newRoomButton(r.String(), func() { w.enter(r) })
+		w.doors[r] = newRoomButton(w.words.Say(r.name()), func() { w.enter(r) })
 	}
 	w.state = newLine(colourDim, theme.SizeNameText).aligned(fyne.TextAlignTrailing)
 	w.progress = newProgressLine()
@@ -178,7 +186,7 @@ func (w *window) build() {
 
 // giveTips gives the choosers and fields that are terse their tips.
 func (w *window) giveTips() {
-	give := func(t *tip, words string) { *t = tip{w.tips, words} }
+	give := func(t *tip, words words.Key) { *t = tip{w.tips, words} }
 	give(&w.material.tip, tipMaterial)
 	give(&w.width.tip, tipWidth)
 	give(&w.tilt.tip, tipTilt)
@@ -286,7 +294,7 @@ func (w *window) lookPane() fyne.CanvasObject {
 
 // stonePane is the right one: the solid and its measures.
 func (w *window) stonePane() fyne.CanvasObject {
-	pose := func(name, words string, p func() solid.Pose) fyne.CanvasObject {
+	pose := func(name, words words.Key, p func() solid.Pose) fyne.CanvasObject {
 		b := w.tips.button(name, nil, words, func() { w.solid.turnTo(p()) })
 		b.Importance = widget.LowImportance
 		return b

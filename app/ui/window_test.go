@@ -45,7 +45,7 @@ func newRig(t *testing.T, plan string) *rig {
 		t.Fatal(err)
 	}
 	r := &rig{come: make(chan struct{}, 1)}
-	w, err := newWindow(a, model.NewDocument(p, ""), r.post, func(stage string) { r.told = append(r.told, stage) })
+	w, err := newWindow(a, model.NewDocument(p, ""), "en", r.post, func(stage string) { r.told = append(r.told, stage) })
 	if err != nil {
 		t.Fatal(err)
 	}
