@@ -1,4 +1,5 @@
-// Package disk writes files so that none is ever half-written.
+// Package disk writes files so that none is ever half-written, and keeps two programs
+// from writing over each other.
 package disk
 
 import (
@@ -9,13 +10,41 @@ import (
 	"os"
 	"path/filepath"
 	"runtime"
-	"syscall"
+	"strings"
+	"time"
 )
 
 // Replace replaces the file at path as a whole or leaves it as it was: the
 // text goes to a new file beside it, which takes the name only once it is safely
-// on the disk. A link stays a link. Errors are in words with a remedy.
-func Replace(path string, write func(io.Writer) error) (err error) {
+// on the disk. A link stays a link. Errors are in words with a remedy. What a program
+// that was killed while it wrote this file left beside it is removed.
+func Replace(path string, write func(io.Writer) error) error {
+	return replace(path, write, func(string) error { return nil })
+}
+
+// ReplaceKnown is Replace for a file that is believed to hold what known tells. If other
+// hands have written to it since, it is left alone and the error is ErrChanged. A file
+// that is gone is written again. It returns what the file holds now.
+func ReplaceKnown(path string, known Stamp, write func(io.Writer) error) (Stamp, error) {
+	sum := newStamper()
+	err := replace(path, func(w io.Writer) error { return write(io.MultiWriter(w, sum)) }, func(target string) error {
+		if now := StampOf(target); now != known && !now.Absent() {
+			return fmt.Errorf("%s: %w", path, ErrChanged)
+		}
+		return nil
+	})
+	if err != nil {
+		return Stamp{}, err
+	}
+	return sum.stamp(), nil
+}
+
+// ErrChanged tells that a file holds something else than the program believes.
+var ErrChanged = errors.New("the file was changed by another program or window since it was read; nothing was written")
+
+// replace writes the new file. Before it takes the name mayTake is asked, and from then on
+// nobody else replaces the target.
+func replace(path string, write func(io.Writer) error, mayTake func(target string) error) (err error) {
 	target := path
 	if resolved, err := filepath.EvalSymlinks(path); err == nil {
 		target = resolved
@@ -25,18 +54,23 @@ func Replace(path string, write func(io.Writer) error) (err error) {
 		if info.IsDir() {
 			return fmt.Errorf("%s is a folder; give the file another name", path)
 		}
+		if !info.Mode().IsRegular() {
+			return fmt.Errorf("%s is a device or the like, no file that can be replaced; give the file another name", path)
+		}
 		if info.Mode().Perm()&0o200 == 0 {
 			return fmt.Errorf("%s is write-protected; save under another name", path)
 		}
 		mode = info.Mode().Perm()
 	}
-	temporary, err := os.CreateTemp(filepath.Dir(target), "."+filepath.Base(target)+".*.new")
+	folder, name := filepath.Dir(target), newName(filepath.Base(target))
+	sweep(folder, name)
+	temporary, err := createHeld(folder, name)
 	if err != nil {
 		return InWords(path, err)
 	}
 	defer func() {
+		temporary.Close()
 		if err != nil {
-			temporary.Close()
 			os.Remove(temporary.Name())
 			err = InWords(path, err)
 		}
@@ -50,29 +84,120 @@ func Replace(path string, write func(io.Writer) error) (err error) {
 	if err := temporary.Sync(); err != nil {
 		return err
 	}
-	if err := temporary.Close(); err != nil {
+	release, err := holdTarget(target)
+	if err != nil {
 		return err
+	}
+	defer release()
+	if err := mayTake(target); err != nil {
+		return err
+	}
+	// Where it can, the new file stays open, and with that claimed, until it bears its name:
+	// nobody takes it for a leftover. What it holds is on the disk since Sync.
+	if !renamesOpenFiles {
+		release()
+		if err := temporary.Close(); err != nil {
+			return err
+		}
 	}
 	if err := os.Rename(temporary.Name(), target); err != nil {
 		return err
 	}
-	if folder, err := os.Open(filepath.Dir(target)); err == nil {
+	if folder, err := os.Open(folder); err == nil {
 		folder.Sync() // makes the new name last through a power cut where the system can; no loss otherwise
 		folder.Close()
 	}
 	return nil
 }
 
-// InWords says why a file could not be written and what to do.
-func InWords(path string, err error) error {
-	folder := filepath.Dir(path)
-	switch {
-	case errors.Is(err, fs.ErrPermission), errors.Is(err, syscall.EROFS):
-		return fmt.Errorf("%s cannot be written to; save into another folder", folder)
-	case errors.Is(err, fs.ErrNotExist):
-		return fmt.Errorf("the folder %s is not there; save into another folder", folder)
-	case errors.Is(err, syscall.ENOSPC):
-		return fmt.Errorf("the disk that holds %s is full; make room or save elsewhere", folder)
+// renamesOpenFiles tells whether a file that is open can take the name of another that is.
+const renamesOpenFiles = runtime.GOOS != "windows"
+
+// newName is the pattern for the new files that are to replace a file; they are hidden
+// and end in .new, so that no dialog and no shell pattern takes one for a plan.
+func newName(base string) string {
+	const longest = 100 // bytes of 255 that a name may have
+	if len(base) > longest {
+		base = strings.ToValidUTF8(base[:longest], "")
 	}
-	return fmt.Errorf("%s could not be written: %w; save under another name", path, err)
+	return "." + base + ".*.new"
+}
+
+// createHeld creates a new file that is locked while it is open, which tells it from one
+// that a killed program left behind.
+func createHeld(folder, pattern string) (*os.File, error) {
+	for {
+		f, err := os.CreateTemp(folder, pattern)
+		if err != nil {
+			return nil, err
+		}
+		if tryLock(f) != errHeld && isStill(f) {
+			return f, nil
+		}
+		f.Close() // another program was just sweeping, and took it for a leftover
+	}
+}
+
+// isStill reports whether the open file still bears its name.
+func isStill(f *os.File) bool {
+	here, err := f.Stat()
+	if err != nil {
+		return false
+	}
+	there, err := os.Lstat(f.Name())
+	return err == nil && os.SameFile(here, there)
+}
+
+// sweep removes the files of the pattern that no program is writing any more.
+func sweep(folder, pattern string) {
+	before, after, _ := strings.Cut(pattern, "*")
+	entries, err := os.ReadDir(folder)
+	if err != nil {
+		return
+	}
+	for _, e := range entries {
+		name := e.Name()
+		middle, ok := strings.CutPrefix(name, before)
+		middle, ok2 := strings.CutSuffix(middle, after)
+		if !ok || !ok2 || !e.Type().IsRegular() || strings.Trim(middle, "0123456789") != "" {
+			continue
+		}
+		sweepOne(filepath.Join(folder, name))
+	}
+}
+
+// sweepOne removes one new file if nobody holds it.
+func sweepOne(path string) {
+	f, err := os.OpenFile(path, os.O_RDWR, 0)
+	if err != nil {
+		return
+	}
+	defer f.Close()
+	switch err := tryLock(f); {
+	case err == errHeld:
+		return
+	case err != nil: // there are no locks here: only what is old is a leftover for sure
+		const surely = 24 * time.Hour
+		info, err := f.Stat()
+		if err != nil || time.Since(info.ModTime()).Abs() < surely {
+			return
+		}
+	}
+	if !renamesOpenFiles {
+		f.Close()
+	}
+	os.Remove(path)
+}
+
+// Writable makes sure that files can be made in the folder. Errors are those of the
+// system.
+func Writable(folder string) error {
+	const pattern = ".pavilight.*.new"
+	sweep(folder, pattern)
+	f, err := createHeld(folder, pattern)
+	if err != nil {
+		return err
+	}
+	f.Close()
+	return os.Remove(f.Name())
 }
