@@ -69,7 +69,7 @@ func Main(ctx context.Context, args []string, env Environment) (status int) {
 	if err == nil {
 		_, err = env.Stdout.Write(out.Bytes())
 		if err != nil {
-			err = ownFault(fmt.Errorf("the results cannot be written: %w", err))
+			err = ownFault(fmt.Errorf("the results cannot be written: %w; make room, or send them elsewhere", err))
 		}
 	}
 	if err == nil {

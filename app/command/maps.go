@@ -25,12 +25,9 @@ func openOut(path string) (*outFolder, error) {
 	if err := os.MkdirAll(path, 0o755); err != nil {
 		return nil, unwritable(path, err)
 	}
-	probe, err := os.CreateTemp(path, ".pavilight.*")
-	if err != nil {
+	if err := disk.Writable(path); err != nil {
 		return nil, unwritable(path, err)
 	}
-	probe.Close()
-	os.Remove(probe.Name())
 	return &outFolder{path: path}, nil
 }
 

@@ -4,7 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
-	"os"
+	"io/fs"
 	"path/filepath"
 	"strings"
 	"time"
@@ -53,6 +53,7 @@ type tuning struct {
 	pattern  tune.Pattern
 	problem  tune.Problem
 	folder   *outFolder
+	writes   disk.Stamp // what the file of --write held when the search began
 	bar      *progress
 }
 
@@ -71,8 +72,18 @@ func (k *tuneCommand) Run(c call) error {
 			return err
 		}
 	}
-	if err := k.probe(); err != nil {
+	if err := t.probe(); err != nil {
 		return err
+	}
+	if k.Keep != "" {
+		lock, err := disk.LockFile(k.Keep)
+		if errors.Is(err, disk.ErrHeld) {
+			return ownFault(fmt.Errorf("--keep %s: another search is writing to this file; wait for its end, or name another file", k.Keep))
+		}
+		if err != nil {
+			return ownFault(fmt.Errorf("--keep %s: %w", k.Keep, err))
+		}
+		defer lock.Release()
 	}
 	err = work(t)
 	t.bar.clear()
@@ -242,31 +253,53 @@ func indexOf(m *gems.Material) float64 {
 }
 
 // probe makes sure that the files can be written, before the work.
-func (k *tuneCommand) probe() error {
-	if k.Write == "" {
+func (t *tuning) probe() error {
+	if t.Write == "" {
 		return nil
 	}
-	if !strings.HasSuffix(strings.ToLower(k.Write), ".toml") {
-		return commandFaultf("--write %s: a plan's file ends in .toml", k.Write)
+	if !strings.HasSuffix(strings.ToLower(t.Write), ".toml") {
+		return commandFaultf("--write %s: a plan's file ends in .toml", t.Write)
 	}
-	f, err := os.CreateTemp(filepath.Dir(k.Write), ".pavilight.*")
-	if err != nil {
-		return unwritable(k.Write, err)
+	if err := disk.Writable(filepath.Dir(t.Write)); err != nil {
+		return unwritable(t.Write, err)
 	}
-	f.Close()
-	os.Remove(f.Name())
+	t.writes = disk.StampOf(t.Write)
 	return nil
 }
 
-// write writes the plan that was found.
+// write writes the plan that was found. If that fails, as where the file was edited during
+// the search, the plan is printed: the search may have taken hours.
 func (t *tuning) write(plan *facets.Plan) error {
 	if t.Write == "" || plan == nil {
 		return nil
 	}
-	if err := disk.Replace(t.Write, plan.Write); err != nil {
-		return ownFault(err)
+	_, err := disk.ReplaceKnown(t.Write, t.writes, plan.Write)
+	if err == nil {
+		return nil
 	}
-	return nil
+	t.bar.clear()
+	t.warn("the plan that was found could not be written; here it is, so that it is not lost:")
+	plan.Write(t.env.Stderr)
+	return ownFault(fmt.Errorf("--write %w", err))
+}
+
+// forget ends the use of the file that --keep names.
+func (t *tuning) forget(memory *tune.Memory) {
+	if err := memory.Close(); err != nil {
+		t.bar.clear()
+		t.warn("--keep: not all that was seen could be remembered: %v", memoryInWords(err))
+	}
+}
+
+// memoryInWords puts what the disk says of the file that --keep names into words with a
+// remedy.
+func memoryInWords(err error) error {
+	var memory *tune.MemoryError
+	var system *fs.PathError
+	if errors.As(err, &memory) && errors.As(memory.Err, &system) {
+		return fmt.Errorf("%s: %w", memory.Path, disk.InWords(memory.Path, system))
+	}
+	return err
 }
 
 // fault says whose fault an error is.
@@ -283,7 +316,7 @@ func (t *tuning) fault(err error) error {
 	case t.Err() != nil && errors.Is(err, context.Cause(t)):
 		return err
 	case errors.As(err, &memory):
-		return ownFault(fmt.Errorf("--keep %w", err))
+		return ownFault(fmt.Errorf("--keep %w", memoryInWords(err)))
 	case errors.As(err, &none), errors.As(err, &outside):
 		return inputFault(err)
 	case errors.As(err, &faults), errors.As(err, &one):

@@ -222,7 +222,7 @@ func changeOf(v tune.Variable, by float64) string {
 func (t *tuning) search() error {
 	memory := t.memory()
 	o, err := tune.Search(t, &t.problem, memory, t.report())
-	memory.Close()
+	t.forget(memory)
 	if o == nil {
 		return err
 	}
@@ -427,7 +427,7 @@ func (t *tuning) field() error {
 	}
 	memory := t.memory()
 	f, stopped := tune.Sweep(t, &t.problem, settings, memory, func(f *tune.Field) { t.bar.show(f.Done) })
-	memory.Close()
+	t.forget(memory)
 	if f == nil {
 		return stopped
 	}
@@ -549,7 +549,7 @@ func (t *tuning) front() error {
 		last = p.Done
 		t.bar.show(min(0.95, (float64(searches)+p.Done)/7))
 	})
-	memory.Close()
+	t.forget(memory)
 	if f == nil {
 		return stopped
 	}

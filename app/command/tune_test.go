@@ -7,11 +7,16 @@ import (
 	"encoding/json"
 	"errors"
 	"image/png"
+	"io"
 	"math"
 	"os"
 	"path/filepath"
 	"strings"
+	"sync"
 	"testing"
+
+	"pavilight/app/disk"
+	"pavilight/facets"
 )
 
 // small is a plan of few facets, so that its searches take a second.
@@ -322,4 +327,48 @@ type watcher func(text string)
 func (w watcher) Write(b []byte) (int, error) {
 	w(string(b))
 	return len(b), nil
+}
+
+// Two searches would write into each other's lines: the second is refused in words.
+func TestTuneRefusesARecordInUse(t *testing.T) {
+	kept := filepath.Join(t.TempDir(), "seen")
+	lock, err := disk.LockFile(kept)
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer lock.Release()
+	got := runCommand("tune", file(t, "tent.toml", small), "--keep", kept)
+	if got.status != OwnFault || !strings.Contains(got.stderr, "another search is writing to this file; wait") {
+		t.Errorf("status %d: %s", got.status, got.stderr)
+	}
+}
+
+// A plan that is edited while a search for a better one runs keeps the edits, and the plan
+// that was found is printed rather than lost.
+func TestTuneLeavesWhatWasEditedMeanwhile(t *testing.T) {
+	plan := file(t, "tent.toml", small)
+	edited := small + "# a second thought\n"
+	var said strings.Builder
+	var once sync.Once
+	watch := watcher(func(text string) {
+		said.WriteString(text)
+		once.Do(func() {
+			if err := os.WriteFile(plan, []byte(edited), 0o600); err != nil {
+				t.Error(err)
+			}
+		})
+	})
+	args := []string{"tune", plan, "--vary", "P=39..41", "--step", "1", "--write", plan}
+	status := Main(context.Background(), args, Environment{Stdout: io.Discard, Stderr: watch})
+	if status != OwnFault || !strings.Contains(said.String(), "was changed by another program") {
+		t.Errorf("status %d: %s", status, said.String())
+	}
+	if got, _ := os.ReadFile(plan); string(got) != edited {
+		t.Errorf("the edited plan became\n%s", got)
+	}
+	_, printed, _ := strings.Cut(said.String(), "so that it is not lost:\n")
+	printed, _, _ = strings.Cut(printed, "pavilight: ")
+	if p, err := facets.ReadPlan(strings.NewReader(printed), "printed"); err != nil || p.Name == "" {
+		t.Errorf("the plan that is printed cannot be read: %v\n%s", err, printed)
+	}
 }

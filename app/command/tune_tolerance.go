@@ -213,7 +213,7 @@ func (t *tuning) move() error {
 		memory.Purpose += "\nto " + to.Key
 	}
 	m, stopped := tune.Move(t, &t.problem, to, refs, t.choose, media, memory, t.report())
-	memory.Close()
+	t.forget(memory)
 	if m == nil {
 		return stopped
 	}

@@ -5,12 +5,15 @@ import (
 	"errors"
 	"fmt"
 	"image"
+	"io/fs"
+	"path/filepath"
 	"runtime"
 	"strings"
 	"sync"
 	"sync/atomic"
 	"time"
 
+	"pavilight/app/disk"
 	"pavilight/app/picture"
 	"pavilight/facets"
 	"pavilight/gems"
@@ -400,8 +403,30 @@ func (r *tuneRun) work(ctx context.Context) error {
 		var text strings.Builder
 		r.plan.Write(&text) // a builder takes all
 		memory = &tune.Memory{Path: r.keep, Purpose: text.String()}
-		defer memory.Close()
+		lock, err := disk.LockFile(r.keep)
+		if errors.Is(err, disk.ErrHeld) {
+			return fmt.Errorf("another search is writing to the record %s; wait for its end, or keep another one", filepath.Base(r.keep))
+		}
+		if err != nil {
+			return err
+		}
+		defer lock.Release()
 	}
+	return errors.Join(recordInWords(r.do(ctx, memory)), recordInWords(memory.Close()))
+}
+
+// recordInWords puts what the disk says of the record into words with a remedy.
+func recordInWords(err error) error {
+	var memory *tune.MemoryError
+	var system *fs.PathError
+	if errors.As(err, &memory) && errors.As(memory.Err, &system) {
+		return fmt.Errorf("not all that was seen is in the record: %w", disk.InWords(memory.Path, system))
+	}
+	return err
+}
+
+// do does the task with a memory, which may be nil.
+func (r *tuneRun) do(ctx context.Context, memory *tune.Memory) error {
 	switch r.task {
 	case ShowField:
 		f, err := tune.Sweep(ctx, r.problem, tune.FieldSettings{Columns: r.cells, Rows: r.cells}, memory, func(f *tune.Field) {

@@ -84,7 +84,7 @@ type judge struct {
 	*Problem
 	ratio   float64                                                              // length over width to keep
 	observe func(ctx context.Context, values []float64, e effort) (sight, error) // sees one stone; a plain function in tests
-	keep    func(key string, s sight) error                                      // writes down what is new; may be nil
+	keep    func(key string, s sight)                                            // writes down what is new; may be nil
 
 	mu    sync.Mutex
 	known map[string]sight
@@ -206,12 +206,9 @@ func (j *judge) tryAlone(ctx context.Context, values []float64, e effort) (Trial
 		_, again := j.known[name]
 		j.known[name] = s
 		if j.keep != nil && !again {
-			err = j.keep(name, s)
+			j.keep(name, s)
 		}
 		j.mu.Unlock()
-		if err != nil {
-			return Trial{}, err
-		}
 	}
 	return j.Goal.weigh(values, s), nil
 }

@@ -2,6 +2,7 @@ package tune
 
 import (
 	"bufio"
+	"bytes"
 	"crypto/sha256"
 	"encoding/hex"
 	"encoding/json"
@@ -13,12 +14,16 @@ import (
 
 // Memory is a file of what was seen, so that a run that was stopped or killed goes on
 // where it was: it asks the same questions again and finds them answered. The file holds
-// one JSON value a line; a last line that was cut short is dropped. A nil Memory keeps
+// one JSON value a line; a last line that was cut short is dropped. Where it cannot be
+// written any more, as on a full disk, the search goes on without, and Close tells. One
+// run at a time may use a file: whoever names it holds a lock on it. A nil Memory keeps
 // nothing.
 type Memory struct {
 	Path    string
 	Purpose string // what the stones depend on beside the problem: the plan's text, the width
 	file    *os.File
+	good    int64 // bytes of whole lines in the file
+	err     error // why no more is written
 }
 
 // mostMemory bounds the file that is read back.
@@ -58,28 +63,40 @@ func (m *Memory) open(j *judge) error {
 		f.Close()
 		return &MemoryError{m.Path, err}
 	}
-	m.file = f
-	j.keep = func(key string, s sight) error {
-		line, err := json.Marshal(memoryLine{key, s})
-		if err == nil {
-			_, err = f.Write(append(line, '\n'))
-		}
-		if err != nil {
-			return &MemoryError{m.Path, err}
-		}
-		return nil
-	}
+	m.file, m.good, m.err = f, good, nil
+	j.keep = m.write
 	return nil
 }
 
-// Close ends the memory's use of its file.
+// write adds a line. The judge calls it one at a time.
+func (m *Memory) write(key string, s sight) {
+	if m.err != nil {
+		return
+	}
+	line, err := json.Marshal(memoryLine{key, s})
+	if err == nil {
+		_, err = m.file.Write(append(line, '\n'))
+	}
+	if err != nil {
+		m.err = &MemoryError{m.Path, err}
+		m.file.Truncate(m.good) // where it fails, too, the half line is dropped by the next run
+		return
+	}
+	m.good += int64(len(line)) + 1
+}
+
+// Close ends the memory's use of its file. It returns a MemoryError if not all that was
+// seen could be written.
 func (m *Memory) Close() error {
 	if m == nil || m.file == nil {
 		return nil
 	}
 	f := m.file
 	m.file = nil
-	return f.Close()
+	if err := f.Close(); err != nil && m.err == nil {
+		m.err = &MemoryError{m.Path, err}
+	}
+	return m.err
 }
 
 // MemoryError says that the file of a Memory cannot be used.
@@ -100,23 +117,24 @@ var (
 	errOtherMemory = errors.New("what this file holds was seen for another plan, goal or set of limits; name another one, or a new one")
 )
 
+func headLine(head memoryHead) []byte {
+	line, _ := json.Marshal(head) // two texts: nothing that can fail
+	return append(line, '\n')
+}
+
 func writeHead(f *os.File, head memoryHead) (int64, error) {
-	line, err := json.Marshal(head)
-	if err != nil {
-		return 0, err
-	}
-	n, err := f.WriteAt(append(line, '\n'), 0)
+	n, err := f.WriteAt(headLine(head), 0)
 	return int64(n), err
 }
 
 // readMemory reads whole lines into known and returns where the last one ends; 0 for
-// an empty file.
+// an empty file and for one whose first line was cut short.
 func readMemory(r io.Reader, want memoryHead, known map[string]sight) (good int64, err error) {
 	in := bufio.NewReader(r)
 	for n := 0; ; n++ {
 		line, err := in.ReadBytes('\n')
 		if errors.Is(err, io.EOF) {
-			if n == 0 && len(line) > 0 {
+			if n == 0 && !bytes.HasPrefix(headLine(want), line) {
 				return 0, errNoMemory // rather than cut off somebody's text
 			}
 			return good, nil // a line without an end was cut short

@@ -137,14 +137,47 @@ func TestMemoryFaults(t *testing.T) {
 			t.Errorf("%s became %q", path, got)
 		}
 	}
+	// A first line that was cut short, as on a full disk, is begun again.
+	short := write("first line cut short", string(text[:20]))
+	j, m := keptJudge(t, short, 0)
+	m.Close()
+	if again, _ := os.ReadFile(short); len(j.known) != 0 || string(again) != string(text) {
+		t.Errorf("begun again it holds %q", again)
+	}
 	// Garbage after whole lines is cut off, and asked again.
 	garbage := write("garbage", string(text)+`{"key":"1 2 12000 0 16 1 false","values":[[0.5]],"errors":[[0.1]]}`+"\n\x00\x00\x00\n")
-	j, m := keptJudge(t, garbage, 0)
+	j, m = keptJudge(t, garbage, 0)
 	m.Close()
 	if len(j.known) != 1 {
 		t.Errorf("%d stones are remembered before the garbage, want 1", len(j.known))
 	}
 	if left, _ := os.ReadFile(garbage); strings.Contains(string(left), "\x00") {
 		t.Error("the garbage is still there")
+	}
+}
+
+// A search whose memory cannot be written any more ends as one without, and Close tells.
+func TestMemoryThatCannotBeWritten(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "seen")
+	j, m := keptJudge(t, path, 0)
+	whole, err := os.ReadFile(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	m.file.Close() // every write fails from here on
+	want, err := search(context.Background(), plainJudge(j.Variables, 0.001, func(x []float64) float64 { return math.Hypot(x[0]-1, x[1]+0.5) / 5 }), nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	got, err := search(context.Background(), j, nil)
+	if err != nil || got.Best.Score != want.Best.Score {
+		t.Errorf("best %+v, %v", got, err)
+	}
+	var fault *MemoryError
+	if err := m.Close(); !errors.As(err, &fault) {
+		t.Errorf("closing tells %v", err)
+	}
+	if left, _ := os.ReadFile(path); string(left) != string(whole) {
+		t.Errorf("the file holds %q", left)
 	}
 }
