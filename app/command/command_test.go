@@ -16,6 +16,9 @@ import (
 	"testing"
 
 	"github.com/go-gl/mathgl/mgl64"
+
+	"pavilight/app/version"
+	"pavilight/trace"
 )
 
 // outcome is what a command left behind.
@@ -541,6 +544,19 @@ func TestHelp(t *testing.T) {
 		if got.status != Done || !strings.Contains(got.stdout, "Usage: pavilight") || got.stderr != "" {
 			t.Errorf("%q: exit status %d\n%s%s", args, got.status, got.stdout, got.stderr)
 		}
+	}
+}
+
+func TestVersion(t *testing.T) {
+	for _, args := range [][]string{{"--version"}, {"look", "--version", "--tilt", "4"}} {
+		got := runCommand(args...)
+		if got.status != Done || !strings.HasPrefix(got.stdout, "Pavilight "+version.Number) ||
+			!strings.Contains(got.stdout, trace.Kernel()) || got.stderr != "" {
+			t.Errorf("%q: exit status %d\n%s%s", args, got.status, got.stdout, got.stderr)
+		}
+	}
+	if b := decoded[version.Build](t, "--version"); b.Version != version.Number || b.Kernel != trace.Kernel() {
+		t.Errorf("as JSON: %+v", b)
 	}
 }
 

@@ -9,7 +9,6 @@ import (
 	"io"
 	"os"
 	"path/filepath"
-	"runtime/debug"
 	"slices"
 	"strconv"
 	"strings"
@@ -18,6 +17,7 @@ import (
 	"pavilight/app/disk"
 	"pavilight/app/drawing"
 	"pavilight/app/sheet"
+	"pavilight/app/version"
 	"pavilight/facets"
 	"pavilight/gems"
 )
@@ -148,7 +148,7 @@ func (k *cutCommand) Run(c call) error {
 
 // job reads the flags that are the same for every plan.
 func (k *cutCommand) job() (sheet.Job, error) {
-	job := sheet.Job{Machine: sheet.Plain(), HeadDeg: k.Head, Large: k.Large, Program: programVersion()}
+	job := sheet.Job{Machine: sheet.Plain(), HeadDeg: k.Head, Large: k.Large, Program: version.Current().Name()}
 	var err error
 	if job.Paper, err = sheet.PaperNamed(k.Paper); err != nil {
 		return job, commandFaultf("--paper: %w", err)
@@ -219,15 +219,6 @@ func sourceDate() (time.Time, error) {
 		return time.Time{}, commandFaultf("SOURCE_DATE_EPOCH %q is no number of seconds since 1970; mend or unset it", text)
 	}
 	return time.Unix(seconds, 0).UTC(), nil
-}
-
-// programVersion returns the program's name and version as sheets print it.
-func programVersion() string {
-	version := "development build"
-	if info, ok := debug.ReadBuildInfo(); ok && info.Main.Version != "" && info.Main.Version != "(devel)" {
-		version = info.Main.Version
-	}
-	return "Pavilight " + version
 }
 
 // plans reads the plans and finds their materials. All faults are told at once.

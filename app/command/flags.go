@@ -14,6 +14,7 @@ import (
 	"github.com/alecthomas/kong"
 
 	"pavilight/app/stock"
+	"pavilight/app/version"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/trace"
@@ -21,8 +22,9 @@ import (
 
 // line is the whole command line.
 type line struct {
-	Help helpFlag `short:"h" help:"Show what a command does and takes."`
-	JSON bool     `name:"json" help:"Print the results as JSON."`
+	Help    helpFlag    `short:"h" help:"Show what a command does and takes."`
+	Version versionFlag `help:"Print which version this is, and how it follows light on this machine."`
+	JSON    bool        `name:"json" help:"Print the results as JSON."`
 
 	Materials string `type:"word" placeholder:"FILE" help:"Materials of your own, a TOML file; without it materials.toml in Pavilight's folder of settings, if it is there."`
 
@@ -72,6 +74,7 @@ func run(ctx context.Context, args []string, env Environment, out io.Writer) err
 			"lights": strings.Join(trace.LightNames(), ", "), "illuminants": strings.Join(trace.IlluminantNames(), ", "),
 			"outlines": strings.Join(facets.Outlines(), ", "),
 		},
+		kong.Bind(answer{out}),
 		kong.ConfigureHelp(kong.HelpOptions{Compact: true, WrapUpperBound: 100}),
 		kong.NamedMapper("number", kong.MapperFunc(decodeNumber)),
 		kong.NamedMapper("word", kong.MapperFunc(decodeWord)),
@@ -83,7 +86,7 @@ func run(ctx context.Context, args []string, env Environment, out io.Writer) err
 		return err
 	}
 	k, err := parser.Parse(args)
-	if errors.Is(err, errHelpShown) {
+	if errors.Is(err, errAnswered) {
 		return nil
 	}
 	if err != nil {
@@ -140,15 +143,39 @@ type helpFlag bool
 // IgnoreDefault keeps the flag from being reset to a default, which would be a use.
 func (helpFlag) IgnoreDefault() {}
 
-// errHelpShown ends parsing once help was printed.
-var errHelpShown = errors.New("help was shown")
+// errAnswered ends parsing once a flag has answered by itself.
+var errAnswered = errors.New("the flag has answered")
 
 // BeforeReset prints help before anything else on the command line is judged.
 func (helpFlag) BeforeReset(k *kong.Context) error {
 	if err := k.PrintUsage(false); err != nil {
 		return err
 	}
-	return errHelpShown
+	return errAnswered
+}
+
+// versionFlag prints which build of the program this is.
+type versionFlag bool
+
+// IgnoreDefault keeps the flag from being reset to a default, which would be a use.
+func (versionFlag) IgnoreDefault() {}
+
+// answer is where a flag prints that answers by itself.
+type answer struct{ io.Writer }
+
+// BeforeReset prints it before anything else on the command line is judged.
+func (versionFlag) BeforeReset(k *kong.Context, to answer) error {
+	build := version.Current()
+	if slices.Contains(k.Args, "--json") {
+		if err := printJSON(to, build); err != nil {
+			return err
+		}
+		return errAnswered
+	}
+	if _, err := fmt.Fprintln(to, build); err != nil {
+		return err
+	}
+	return errAnswered
 }
 
 // decodeNumber reads a number that must lie between the flag's tags least and most,

@@ -15,6 +15,7 @@ import (
 
 	"pavilight/app/disk"
 	"pavilight/app/report"
+	"pavilight/app/version"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/testdata"
@@ -250,7 +251,7 @@ func (r *teller) readCover() error {
 	}
 	r.cover = report.Cover{
 		Language: t.Language, Colleague: slices.Contains(depth, "colleague"), Author: t.Author, Client: t.Client,
-		Notes: t.Notes, Program: programVersion(),
+		Notes: t.Notes, Program: version.Current().Name(),
 	}
 	for _, text := range []struct {
 		flag, words string

@@ -14,6 +14,7 @@ import (
 
 	"pavilight/app/model"
 	"pavilight/app/sheet"
+	"pavilight/app/version"
 )
 
 // cutBench is the room where the sheet for the bench is laid out.
@@ -208,7 +209,7 @@ func (w *window) enterCut() {
 		w.say(err)
 		return
 	}
-	w.cutting.cut.SetSubject(plan, material, w.bench.Look.Around, w.bench.Look.Settings().Head, programName())
+	w.cutting.cut.SetSubject(plan, material, w.bench.Look.Around, w.bench.Look.Settings().Head, version.Current().Name())
 	w.refreshCut()
 }
 

@@ -3,7 +3,6 @@ package ui
 import (
 	"fmt"
 	"runtime"
-	"runtime/debug"
 	"strings"
 
 	"fyne.io/fyne/v2"
@@ -12,7 +11,7 @@ import (
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
 
-	"pavilight/trace"
+	"pavilight/app/version"
 )
 
 // about says what the program is, which versions it runs on and what it is not.
@@ -21,47 +20,12 @@ func (w *window) about() {
 		"Where the light in a faceted gemstone goes, and how to cut it so that it comes back.",
 		"A map is a model. It grades no stone and replaces no laboratory. Not modelled: inclusions, haze, " +
 			"colour zones, fluorescence, fracture filling.",
-		versions(),
+		version.Current().String(),
 	}, "\n\n"))
 	text.Wrapping = fyne.TextWrapWord
 	scroll := container.NewVScroll(text)
 	scroll.SetMinSize(fyne.NewSize(440, 240))
 	w.raise(dialog.NewCustom("About Pavilight", "Close", scroll, w.win))
-}
-
-// programName is the program's name and version, as sheets print it.
-func programName() string {
-	first, _, _ := strings.Cut(versions(), "\n")
-	return first
-}
-
-// versions lists the program's own version and those of the libraries that matter.
-func versions() string {
-	lines := []string{}
-	version, revision := "development build", ""
-	info, ok := debug.ReadBuildInfo()
-	if ok {
-		if v := info.Main.Version; v != "" && v != "(devel)" {
-			version = v
-		}
-		for _, s := range info.Settings {
-			if s.Key == "vcs.revision" && len(s.Value) >= 12 {
-				revision = s.Value[:12]
-			}
-		}
-	}
-	lines = append(lines, strings.TrimSpace("Pavilight "+version+" "+revision))
-	lines = append(lines, fmt.Sprintf("%s on %s/%s", runtime.Version(), runtime.GOOS, runtime.GOARCH))
-	lines = append(lines, "light followed in "+trace.Kernel())
-	if ok {
-		for _, d := range info.Deps {
-			switch d.Path {
-			case "fyne.io/fyne/v2", "github.com/go-gl/mathgl", "gonum.org/v1/gonum", "github.com/pelletier/go-toml/v2":
-				lines = append(lines, d.Path+" "+d.Version)
-			}
-		}
-	}
-	return strings.Join(lines, "\n")
 }
 
 // diagnostics is what helps to find a fault of the program.
@@ -70,7 +34,7 @@ func (w *window) diagnostics() string {
 	size := w.win.Canvas().Size()
 	return fmt.Sprintf("%s\nwindow %.0f x %.0f, scale %.2f, text %.1f, theme %s\n"+
 		"processors %d, tracing on %d\nmaps of %d pixels\nplan %q: %s\nstate: %s\n",
-		versions(), size.Width, size.Height, w.win.Canvas().Scale(), w.files.textScale(), w.files.brightness(),
+		version.Current().String(), size.Width, size.Height, w.win.Canvas().Scale(), w.files.textScale(), w.files.brightness(),
 		runtime.NumCPU(), s.Workers, s.Pixels, w.bench.Doc.Plan().Name, strings.Join(w.bench.Troubles(), "; "), w.bench.Look.Status())
 }
 

@@ -16,9 +16,9 @@ import (
 	"fyne.io/fyne/v2/lang"
 	"fyne.io/fyne/v2/storage/repository"
 
-	"pavilight/app/stock"
-
 	"pavilight/app/model"
+	"pavilight/app/stock"
+	"pavilight/app/version"
 	"pavilight/facets"
 	"pavilight/testdata"
 )
@@ -36,7 +36,7 @@ const appID = "org.pavilight"
 func Run(ctx context.Context, o Options) error {
 	started := time.Now()
 	app.SetMetadata(fyne.AppMetadata{
-		ID: appID, Name: "Pavilight", Version: "0.1.0",
+		ID: appID, Name: "Pavilight", Version: version.Number,
 		// All of our goroutines come in by post; the toolkit checks that where it is asked to.
 		Migrations: map[string]bool{"fyneDo": os.Getenv(stagesVariable) != checkThreads},
 	})

@@ -15,6 +15,7 @@ import (
 
 	"pavilight/app/model"
 	"pavilight/app/report"
+	"pavilight/app/version"
 	"pavilight/facets"
 	"pavilight/trace"
 )
@@ -207,7 +208,7 @@ func (w *window) stonesBeside() []*fyne.MenuItem {
 
 // enterTell has the report be of the plan as it stands.
 func (w *window) enterTell() {
-	w.telling.tell.SetSubject(w.bench.Doc.Plan(), w.bench.Look.Around, w.bench.Look.Settings().Head, programName())
+	w.telling.tell.SetSubject(w.bench.Doc.Plan(), w.bench.Look.Around, w.bench.Look.Settings().Head, version.Current().Name())
 	w.refreshTell()
 }
 
