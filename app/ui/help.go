@@ -11,6 +11,7 @@ import (
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
 
+	"pavilight/app/licences"
 	"pavilight/app/version"
 )
 
@@ -25,7 +26,27 @@ func (w *window) about() {
 	text.Wrapping = fyne.TextWrapWord
 	scroll := container.NewVScroll(text)
 	scroll.SetMinSize(fyne.NewSize(440, 240))
-	w.raise(dialog.NewCustom("About Pavilight", "Close", scroll, w.win))
+	d := dialog.NewCustomWithoutButtons("About Pavilight", scroll, w.win)
+	d.SetButtons([]fyne.CanvasObject{
+		widget.NewButton(w.words.Say("Licences"), func() { d.Hide(); w.licences() }),
+		widget.NewButton("Close", d.Hide),
+	})
+	w.raise(d)
+}
+
+// licences shows the licences of everything by others in the program. Only the lines
+// in sight are laid out: all at once would hold the window up.
+func (w *window) licences() {
+	lines := strings.Split(licences.ThirdParty(), "\n")
+	list := widget.NewList(
+		func() int { return len(lines) },
+		func() fyne.CanvasObject { return newLine(theme.ColorNameForeground, theme.SizeNameCaptionText).monospaced() },
+		func(i widget.ListItemID, o fyne.CanvasObject) { o.(*line).setText(lines[i]) })
+	list.HideSeparators = true
+	list.OnSelected = list.Unselect
+	size := w.win.Canvas().Size()
+	room := container.NewGridWrap(fyne.NewSize(min(820, size.Width-80), min(520, size.Height-160)), list)
+	w.raise(dialog.NewCustom(w.words.Say("Licences of what Pavilight is built with"), "Close", room, w.win))
 }
 
 // diagnostics is what helps to find a fault of the program.

@@ -96,6 +96,7 @@ func (w *window) buildMenu() *fyne.MainMenu {
 		w.item("First steps", nil, w.firstSteps),
 		w.item("Copy diagnostics", nil, w.copyDiagnostics),
 		fyne.NewMenuItemSeparator(),
+		w.item("Licences", nil, w.licences),
 		w.item("About Pavilight", nil, w.about))
 	m.main = fyne.NewMainMenu(file, edit, view, help)
 	return m.main

@@ -16,6 +16,7 @@ import (
 	"fyne.io/fyne/v2/lang"
 	"fyne.io/fyne/v2/storage/repository"
 
+	"pavilight/app/icon"
 	"pavilight/app/model"
 	"pavilight/app/stock"
 	"pavilight/app/version"
@@ -30,6 +31,10 @@ type Options struct {
 
 const appID = "org.pavilight"
 
+// iconPixels is the side of the icon that the window system gets; it makes its own
+// smaller ones.
+const iconPixels = 128
+
 // Run opens the window and returns when it was closed. A plan that cannot be opened
 // is told of in the window, which then shows the bundled stone. When ctx is
 // cancelled the window closes; unsaved work is kept for the next start.
@@ -42,6 +47,7 @@ func Run(ctx context.Context, o Options) error {
 	})
 	makeFolders()
 	a := app.NewWithID(appID)
+	a.SetIcon(fyne.NewStaticResource("pavilight.png", icon.PNG(iconPixels)))
 	if files, err := repository.ForScheme("file"); err == nil {
 		repository.Register("file", writeLater(files))
 	}

@@ -36,6 +36,7 @@ func newWord(colour fyne.ThemeColorName, size fyne.ThemeSizeName, text string) *
 }
 
 func (l *line) bold() *line                    { l.style.Bold = true; return l }
+func (l *line) monospaced() *line              { l.style.Monospace = true; return l }
 func (l *line) with(text string) *line         { l.text = text; return l }
 func (l *line) aligned(a fyne.TextAlign) *line { l.align = a; return l }
 
