@@ -40,7 +40,9 @@ func (w *window) licences() {
 	lines := strings.Split(licences.ThirdParty(), "\n")
 	list := widget.NewList(
 		func() int { return len(lines) },
-		func() fyne.CanvasObject { return newLine(theme.ColorNameForeground, theme.SizeNameCaptionText).monospaced() },
+		func() fyne.CanvasObject {
+			return newLine(theme.ColorNameForeground, theme.SizeNameCaptionText).monospaced()
+		},
 		func(i widget.ListItemID, o fyne.CanvasObject) { o.(*line).setText(lines[i]) })
 	list.HideSeparators = true
 	list.OnSelected = list.Unselect
