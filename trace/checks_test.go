@@ -131,6 +131,7 @@ func above(t *testing.T, what string, more, less estimate, errors float64, sourc
 var themes = []struct{ file, title string }{
 	{"fresnel_test.go", "A facet: reflection, refraction, critical angle, phase"},
 	{"crossing_test.go", "Films on a facet"},
+	{"haze_test.go", "Films with dust in them"},
 	{"laws_test.go", "Light in a stone: plates, prisms, boxes, rods"},
 	{"rhomb_test.go", "Polarisation from facet to facet"},
 	{"slow_test.go", "The tracer against one written as on paper"},

@@ -10,6 +10,7 @@ type Film struct {
 	Index      float64 // refractive index
 	Extinction float64 // imaginary part of the index; 0 for a clear film
 	Thickness  float64 // nm
+	Scatter    float64 // optical depth of what scatters in it, such as dust, straight through; 0 for a film without
 }
 
 // thick is the thickness in nm beyond which the orders of reflection in a film are

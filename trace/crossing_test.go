@@ -9,7 +9,8 @@ import (
 
 func TestFilmOfNothing(t *testing.T) {
 	for _, cosI := range []float64{1, 0.9, 0.7, 0.3, 0.05} {
-		for _, f := range []Film{{1.4, 0, 0}, {1.62, 0, 800}, {1, 0, 300}, {1.62, 0, 9000}, {1, 0, 9000}} {
+		for _, f := range []Film{{Index: 1.4}, {Index: 1.62, Thickness: 800}, {Index: 1, Thickness: 300},
+			{Index: 1.62, Thickness: 9000}, {Index: 1, Thickness: 9000}} {
 			plain := plainCrossing(1.62, 1, cosI)
 			c := filmCrossing(1.62, f, 1, cosI, 550)
 			near(t, "Rs", c.rs, plain.rs, 1e-12, "no thickness, or a film of the stone or of the air: no film")

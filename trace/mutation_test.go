@@ -81,6 +81,9 @@ var mutations = []struct{ what, file, old, new string }{
 		"r.power[i] = w.flux / z * both", "r.power[i] = w.flux * both"},
 	{"power by amplitude alone on reflection", "crystal.go",
 		"r.power[i] = -square(amplitude[i]) * w.flux / in.flux", "r.power[i] = square(amplitude[i])"},
+	{"grains that throw light forward only", "haze.go", "z := 2*j.dice.roll() - 1", "z := j.dice.roll()"},
+	{"soil that takes by its thickness instead of the way", "haze.go", "math.Exp(-absorb*way)", "math.Exp(-absorb*way*way)"},
+	{"light that slips out between the stone and a wall", "travel.go", "case !l.mirror && j.walled(k, l.x):", "case false:"},
 	{"the other wave chosen", "travel_crystal.go", "j.dice.roll()*(power[0]+power[1]) >= power[0]",
 		"j.dice.roll()*(power[0]+power[1]) < power[0]"},
 	{"absorption of the two waves exchanged", "travel_crystal.go",
@@ -90,7 +93,7 @@ var mutations = []struct{ what, file, old, new string }{
 
 // quickTests are tried first on a mutation.
 const quickTests = "Fresnel|Critical|Retardance|Film|Slab|Prism|Roof|Minimum|Rod|AgainstSlow|TestPath|Frame|TestHead|MapIs|" +
-	"Dish|MeetAgainst|BodyColour|Ground|Lambert|Walk|Calcite|Axis|Crystal|Berreman|SmallBirefringence|Absorption|Doubling|Limits|Harding|TravellerAgrees"
+	"Dish|MeetAgainst|BodyColour|Ground|ClosedWhite|Soil|Lambert|Walk|Calcite|Axis|Crystal|Berreman|SmallBirefringence|Absorption|Doubling|Limits|Harding|TravellerAgrees"
 
 // mutated is how the page lists one.
 func mutated(i int) string {

@@ -84,6 +84,9 @@ type Setting struct {
 	Open        float64 // share of the pavilion's depth, from the culet up, that it leaves open; 0 to 1
 }
 
+// mostScatter is the greatest optical depth of a film: white paint has about so much.
+const mostScatter = 100
+
 // liquidAbove is how far a dish's surface lies above the stone, in units of the
 // radius of the sphere that holds the stone. The surface is wide, so the height only
 // decides where light that it sends back meets the stone again.
@@ -151,6 +154,12 @@ func (s Scene) check() error {
 		}
 		if !(c.Thickness >= 0 && c.Thickness <= 1e6) {
 			faults = append(faults, fmt.Errorf("thickness %v nm of a film is outside 0 to 1,000,000", c.Thickness))
+		}
+		switch {
+		case !(c.Scatter >= 0 && c.Scatter <= mostScatter):
+			faults = append(faults, fmt.Errorf("scattering %v of a film is outside 0 to %d", c.Scatter, mostScatter))
+		case c.Scatter > 0 && c.Thickness <= thick:
+			faults = append(faults, fmt.Errorf("a film that scatters must be thicker than %d nm, not %v nm", thick, c.Thickness))
 		}
 	}
 	for _, around := range s.Surroundings {

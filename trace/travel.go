@@ -53,6 +53,7 @@ type leg struct {
 	k       vec     // wave vector inside a doubly refracting stone; d is then the ray
 	extra   bool    // there, the extraordinary wave
 	path    float64 // inside the stone so far, in units of the stone
+	strewn  bool    // has been scattered
 	mirror  bool    // only mirrored so far, by the first surface
 	seen    bool    // has met the pavilion
 	bounces int
@@ -189,6 +190,10 @@ func (j *journey) land(k int, l leg) {
 		j.landDouble(k, l)
 		return
 	}
+	if j.film[k].scatters() {
+		j.landOnSoil(k, l)
+		return
+	}
 	c := j.crossing(k, cosI, false)
 	in := refract(l.d, v, j.lambda.medium[k]/j.stone, cosI, c.cosT)
 	mirrored, through := l.light.meet(&c, l.d, v, in)
@@ -196,27 +201,47 @@ func (j *journey) land(k int, l leg) {
 	l2 := l
 	l2.d, l2.light = l.d.plus(-2*cosI, v), mirrored
 	l.d, l.light, l.inside, l.mirror = in, through, true, false
-	j.part(l2, l)
-}
-
-// part puts both branches of a split on the stack.
-func (j *journey) part(a, b leg) {
-	j.settle(&a.light, &b.light)
-	for _, l := range []leg{a, b} {
-		if l.light.i > 0 {
-			j.stack = append(j.stack, l)
-		}
+	j.settle(&l2, &l2.light, &l.light)
+	j.turnBack(k, l2)
+	if l.light.i > 0 {
+		j.stack = append(j.stack, l)
 	}
 }
 
-// settle averages the two beams of a split where that is asked for, and gives all
-// the light to one of them where it has become faint.
-func (j *journey) settle(a, b *beam) {
+// turnBack lets a leg go on that facet k mirrors outside: toward the wall right behind
+// the facet where it came from there, away otherwise.
+func (j *journey) turnBack(k int, l leg) {
+	switch {
+	case l.light.i <= 0:
+	case !l.mirror && j.walled(k, l.x):
+		j.away(k, l)
+	default:
+		j.stack = append(j.stack, l)
+	}
+}
+
+// walled reports whether the setting's wall lies behind facet k at x.
+func (j *journey) walled(k int, x vec) bool {
+	return j.cup != nil && j.body.side[k] == facets.Pavilion && x.z > j.cup.opening
+}
+
+// faintStrewn is the power under which light that has been scattered goes one way only
+// where it could go two. Its directions are chance already, so following more of them
+// than one gains little.
+const faintStrewn = 0.1
+
+// settle averages the two beams of a split of leg l where that is asked for, and gives
+// all the light to one of them where it has become faint.
+func (j *journey) settle(l *leg, a, b *beam) {
 	if j.averaged {
 		a.forget()
 		b.forget()
 	}
-	if all := a.i + b.i; all < j.faint && a.i > 0 && b.i > 0 {
+	faint := j.faint
+	if l.strewn {
+		faint = max(faint, faintStrewn)
+	}
+	if all := a.i + b.i; all < faint && a.i > 0 && b.i > 0 {
 		if j.dice.roll()*all < a.i {
 			a.grow(all)
 			*b = beam{}
@@ -243,6 +268,12 @@ func (j *journey) run(l leg) {
 				return
 			}
 		}
+		if j.film[k].scatters() {
+			if !j.soil(k, &l) {
+				return
+			}
+			continue
+		}
 		v := b.normal[k]
 		cosI := min(1, l.d.dot(v))
 		c := j.crossing(k, cosI, true)
@@ -253,7 +284,7 @@ func (j *journey) run(l leg) {
 		all := l.light.i
 		reflected, through := l.light.meet(&c, l.d, v, out)
 		j.lose(all - reflected.i - through.i)
-		j.settle(&reflected, &through)
+		j.settle(&l, &reflected, &through)
 		if !l.seen && b.side[k] == facets.Pavilion {
 			l.seen = true
 			j.sees(through.i, out)
@@ -284,10 +315,10 @@ func (j *journey) sees(power float64, out vec) {
 func (j *journey) away(k int, l leg) {
 	l.door = k
 	up := l.d.dot(j.outline.eye)
-	if c := j.cup; c != nil && j.body.side[k] == facets.Pavilion && l.x.z > c.opening {
-		// The wall lies right behind the facet and sends its part back into it.
+	if j.walled(k, l.x) {
+		// The wall sends its part back into the facet.
 		n := j.body.normal[k].scale(-1)
-		if j.scatter(&l, c.reflectance, n) {
+		if j.scatter(&l, j.cup.reflectance, n) {
 			j.land(k, l)
 		}
 		return
@@ -325,7 +356,7 @@ func (j *journey) roam(l leg) {
 			c := plainCrossing(j.liquid, 1, up)
 			out := refract(l.d, eye, j.liquid, up, c.cosT)
 			back, through := l.light.meet(&c, l.d, eye, out)
-			j.settle(&back, &through)
+			j.settle(&l, &back, &through)
 			if through.i > 0 {
 				left := l
 				left.light = through
@@ -356,7 +387,7 @@ func (j *journey) scatter(l *leg, reflectance float64, n vec) (ok bool) {
 	sent, kept := l.light, l.light
 	sent.grow(l.light.i * reflectance)
 	kept.grow(l.light.i - sent.i)
-	j.settle(&sent, &kept)
+	j.settle(l, &sent, &kept)
 	q := Leaked
 	if l.mirror {
 		q = Surface
@@ -368,6 +399,7 @@ func (j *journey) scatter(l *leg, reflectance float64, n vec) (ok bool) {
 	l.d = j.lambert(n)
 	l.light = fresh(l.d)
 	l.light.grow(sent.i)
+	l.strewn = true
 	l.bounces++
 	return true
 }

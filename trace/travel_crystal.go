@@ -33,10 +33,8 @@ func (j *journey) landDouble(k int, l leg) {
 	off := l
 	off.d, off.light = l.d.plus(-2*l.d.dot(n), n), e.mirrored
 	in := beam{i: e.power[0] + e.power[1]}
-	j.settle(&off.light, &in)
-	if off.light.i > 0 {
-		j.stack = append(j.stack, off)
-	}
+	j.settle(&l, &off.light, &in)
+	j.turnBack(k, off)
 	l.inside, l.mirror = true, false
 	if in.i >= bothWaves {
 		for i := range e.waves {
@@ -91,7 +89,7 @@ func (j *journey) runDouble(l leg) {
 			through.grow(all * through.i)
 		}
 		reflected := beam{i: all * (at.power[0] + at.power[1])}
-		j.settle(&reflected, &through)
+		j.settle(&l, &reflected, &through)
 		if !l.seen && b.side[k] == facets.Pavilion {
 			l.seen = true
 			j.sees(through.i, at.out)

@@ -1,6 +1,7 @@
 package trace
 
 import (
+	"context"
 	"math"
 	"math/rand/v2"
 	"testing"
@@ -139,6 +140,21 @@ func TestGround(t *testing.T) {
 			tr.under, tr.cup = nil, &cup{1, -2}
 			set := send()
 			near(t, name+": sum in a setting", set.Sum(), 1, 1e-9, "light is neither made nor lost")
+		}
+	}
+}
+
+// TestClosedWhiteSetting looks for light that gets past a wall that takes nothing.
+func TestClosedWhiteSetting(t *testing.T) {
+	s := stones(t)["round.toml"]
+	scene := Scene{Stone: s, Material: plain(t, "stone", 1.5), Surroundings: Around(plain(t, "water", 1.333)), Setting: &Setting{Reflectance: 1}}
+	doors, err := Doors(context.Background(), scene, 0, Settings{Wavelength: 550, Seed: 7})
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, d := range doors {
+		if d.Tier == "P1" || d.Tier == "P2" {
+			near(t, d.Tier+" lets out", d.Returned+d.Head+d.Leaked, 0, 0, "a closed white wall takes nothing")
 		}
 	}
 }

@@ -20,7 +20,7 @@ type sceneFlags struct {
 	In         string   `default:"air,water,oil" type:"word" placeholder:"NAMES" help:"What surrounds the stone: names of the material table or plain refractive indices, with commas between (${default})."`
 	Dish       string   `type:"word" placeholder:"NAMES" help:"More columns: liquids in a dish with a flat surface, seen from the air above."`
 	Wet        string   `type:"word" placeholder:"TIERS" help:"Only these tiers touch what --in names, with commas between; all others are in air."`
-	Film       []string `sep:"none" placeholder:"TIERS=INDEX:NM" help:"A film on some tiers: its refractive index and thickness, and after another colon its extinction. May be given again."`
+	Film       []string `sep:"none" placeholder:"TIERS=INDEX:NM" help:"A film on some tiers: its refractive index and thickness, then after colons, where wanted, its extinction and the optical depth of the dust in it. May be given again."`
 	Ground     string   `type:"word" placeholder:"R" help:"Diffuse ground under the stone that sends back this share of light, 0 to 1: white paper is 0.8 or so."`
 	Setting    string   `type:"word" placeholder:"R[,OPEN]" help:"Diffuse wall right behind the pavilion that sends back this share of light; OPEN is the share of the pavilion's depth left open at the culet."`
 	Body       string   `type:"word" placeholder:"COLOUR:MM" help:"Body colour #rrggbb as seen through so many mm of daylight; COLOUR/COLOUR for ordinary and extraordinary ray."`
@@ -122,8 +122,7 @@ func (f *sceneFlags) arranged() (words []string) {
 	}
 	add(f.Wet != "", "only %s wet and all else in air", f.Wet)
 	for _, film := range f.Film {
-		tiers, rest, _ := strings.Cut(film, "=")
-		add(true, "a film %s nm on %s", rest, tiers)
+		words = append(words, filmWords(film))
 	}
 	add(f.Ground != "", "ground that sends back %s", f.Ground)
 	wall, open, partly := strings.Cut(f.Setting, ",")
@@ -179,7 +178,20 @@ func (f *sceneFlags) light(colour bool) (*trace.Light, error) {
 	return light, nil
 }
 
-// readFilm reads TIERS=INDEX:NM or TIERS=INDEX:NM:EXTINCTION.
+// filmWords says what a film is that readFilm has taken.
+func filmWords(text string) string {
+	c, _ := readFilm(text)
+	words := fmt.Sprintf("a film of index %g, %g nm thick", c.Index, c.Thickness)
+	if c.Extinction > 0 {
+		words += fmt.Sprintf(", of extinction %g", c.Extinction)
+	}
+	if c.Scatter > 0 {
+		words += fmt.Sprintf(", with dust of optical depth %g", c.Scatter)
+	}
+	return words + " on " + strings.Join(c.Tiers, ",")
+}
+
+// readFilm reads TIERS=INDEX:NM, TIERS=INDEX:NM:EXTINCTION or TIERS=INDEX:NM:EXTINCTION:SCATTER.
 func readFilm(text string) (trace.Coating, error) {
 	tiers, rest, ok := strings.Cut(text, "=")
 	bad := commandFaultf("--film %q: write tiers, refractive index and thickness in nm, such as P1,P2=1.48:20000", text)
@@ -194,12 +206,15 @@ func readFilm(text string) (trace.Coating, error) {
 		}
 		numbers = append(numbers, v)
 	}
-	if len(numbers) < 2 || len(numbers) > 3 {
+	if len(numbers) < 2 || len(numbers) > 4 {
 		return trace.Coating{}, bad
 	}
 	c := trace.Coating{Tiers: splitList(tiers), Film: trace.Film{Index: numbers[0], Thickness: numbers[1]}}
-	if len(numbers) == 3 {
+	if len(numbers) > 2 {
 		c.Extinction = numbers[2]
+	}
+	if len(numbers) > 3 {
+		c.Scatter = numbers[3]
 	}
 	return c, nil
 }

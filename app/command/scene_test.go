@@ -14,7 +14,7 @@ import (
 func TestLookSaysWhatIsArranged(t *testing.T) {
 	got := runCommand(quick("look", "--in", "oil", "--wet", "P1,P2", "--film", "C1=1.48:20000", "--ground", "0.8", "--setting", "0.5,0.2",
 		"--illuminant", "A", "--distance", "300", "--aside", "-30", "--below", "0.4")...)
-	for _, want := range []string{"only P1,P2 wet and all else in air", "a film 1.48:20000 nm on C1", "ground that sends back 0.8",
+	for _, want := range []string{"only P1,P2 wet and all else in air", "a film of index 1.48, 20000 nm thick on C1", "ground that sends back 0.8",
 		"a wall behind the pavilion that sends back 0.5", "open over 0.2 of its depth", "spectrum A", "eye 300 mm away", "and -30 mm aside",
 		"luminance 0.4 below"} {
 		if !strings.Contains(got.stdout, want) {
@@ -52,6 +52,10 @@ func TestScene(t *testing.T) {
 	within("surface with an oiled pavilion", oil.Ledger.Surface, bare.Ledger.Surface, 1e-3)
 	film := look("--film", "P1,P2=1.48:20000")
 	within("leaked under a clear film, which keeps the critical angle", film.Ledger.Leaked, bare.Ledger.Leaked, 0.02)
+	dust := look("--film", "P1,P2=1.48:20000:0:0.5")
+	if !(dust.Ledger.Leaked > film.Ledger.Leaked+0.05) {
+		t.Errorf("leaked %v under dust and %v under a clear film: dust throws light out", dust.Ledger.Leaked, film.Ledger.Leaked)
+	}
 	soil := look("--film", "P1,P2=1.48:20000:0.01")
 	if !(soil.Ledger.Absorbed > 0.1) {
 		t.Errorf("a soiled pavilion absorbs %v", soil.Ledger.Absorbed)
@@ -124,6 +128,8 @@ func TestSceneFaults(t *testing.T) {
 		{[]string{"--film", "P1"}, "P1,P2=1.48:20000"},
 		{[]string{"--film", "X9=1.4:300"}, "no facet of that tier"},
 		{[]string{"--film", "P1=0.2:300"}, "index 0.2"},
+		{[]string{"--film", "P1=1.5:300:0:1"}, "thicker than 5000 nm"},
+		{[]string{"--film", "P1=1.5:30000:0:-1"}, "scattering -1 of a film"},
 		{[]string{"--wet", "X9"}, "no facet of that tier"},
 		{[]string{"--wet", "P1", "--dish", "water", "--in", "oil", "--ground", "2"}, "outside 0 to 1"},
 		{[]string{"--setting", "0.5,0.5,0.5"}, "1 or 2 numbers"},
