@@ -27,12 +27,12 @@ func (f *Fault) Error() string {
 	}
 	b.WriteString(": ")
 	if f.Tier != "" {
-		fmt.Fprintf(&b, "tier %q: ", f.Tier)
+		fmt.Fprintf(&b, "tier %q: ", shorten(f.Tier))
 	}
 	if f.Field != "" {
 		b.WriteString(f.Field)
 		if f.Got != "" {
-			fmt.Fprintf(&b, " %q", f.Got)
+			fmt.Fprintf(&b, " %q", shorten(f.Got))
 		}
 		b.WriteString(": ")
 	}

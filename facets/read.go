@@ -384,8 +384,8 @@ func (r *reader) rough(line int, entries []entry) {
 		case "size_mm":
 			q.SizeMM = r.nums(e)
 			for _, v := range q.SizeMM {
-				if v <= 0 {
-					r.fault(e.line, "size_mm", e.value.written, "a size is not above 0", "give sizes in mm")
+				if v <= 0 || v > mostRoughMM {
+					r.fault(e.line, "size_mm", e.value.written, "no rough has such a size", "give sizes in mm, above 0")
 				}
 			}
 		case "file":
@@ -897,18 +897,11 @@ func (r *reader) refers(at map[string]int, i int, name, written string) {
 	case !ok:
 		var names []string
 		for _, o := range r.plan.Tiers[:i] {
-			names = append(names, o.Name)
+			names = append(names, shorten(o.Name))
 		}
-		r.fault(t.Stop.Line, field, written, "there is no tier of this name", "cut so far: "+orNone(names))
+		r.fault(t.Stop.Line, field, written, "there is no tier of this name", "cut so far: "+several(names))
 	case k >= i:
 		r.fault(t.Stop.Line, field, written, "that tier is not cut yet",
 			"move this tier after it, or stop by a tier that is cut before")
 	}
-}
-
-func orNone(names []string) string {
-	if len(names) == 0 {
-		return "none"
-	}
-	return strings.Join(names, ", ")
 }

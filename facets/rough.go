@@ -73,6 +73,7 @@ type Fit struct {
 
 // Limits of a fit.
 const (
+	mostRoughMM    = 1e5  // of a size: beyond it, it is a slip of the pen
 	maxAvoid       = 200  // places to avoid
 	maxRoughPlanes = 2000 // flats that a scanned rough is taken as
 	coarseShare    = 0.005
@@ -197,7 +198,7 @@ func (r Rough) check() Faults {
 		if r.Shape == Cylinder {
 			size[1] = size[0]
 		}
-		if !(min(size[0], size[1], size[2]) > 0) || !finite(size) || max(size[0], size[1], size[2]) > 1e5 {
+		if !(min(size[0], size[1], size[2]) > 0) || !finite(size) || max(size[0], size[1], size[2]) > mostRoughMM {
 			add("size", r.describe(), "sizes are positive millimetres", "give what a caliper reads")
 		} else if 2*r.allowance() >= min(size[0], size[1], size[2]) {
 			add("allowance", fmt.Sprint(r.allowance()), "an allowance on both sides leaves nothing of "+r.describe(), "reduce it")

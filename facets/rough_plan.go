@@ -31,8 +31,8 @@ func ParseRough(text string) (*RoughRef, error) {
 	}
 	for _, part := range strings.Split(rest, "x") {
 		v, err := strconv.ParseFloat(strings.TrimSpace(part), 64)
-		if err != nil || !(v > 0) {
-			return nil, fault(fmt.Sprintf("%q is no size", part), "give mm above 0 with x between")
+		if err != nil || !(v > 0 && v <= mostRoughMM) {
+			return nil, fault(fmt.Sprintf("%q is no size", shorten(part)), "give mm above 0 with x between")
 		}
 		q.SizeMM = append(q.SizeMM, v)
 	}

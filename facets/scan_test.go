@@ -14,6 +14,8 @@ import (
 	"testing"
 
 	"github.com/go-gl/mathgl/mgl64"
+
+	"pavilight/testdata/budget"
 )
 
 func readScanFile(t testing.TB, name string) *Scan {
@@ -688,7 +690,11 @@ func fuzzScan(f *testing.F, ending string) {
 		}
 	}
 	f.Fuzz(func(t *testing.T, data []byte) {
-		sc, err := ReadScan(bytes.NewReader(data), "fuzz"+ending, ScanOptions{})
+		var sc *Scan
+		var err error
+		budget.Hold(t, scanMemory(len(data)), func() {
+			sc, err = ReadScan(bytes.NewReader(data), "fuzz"+ending, ScanOptions{})
+		})
 		var fault *Fault
 		if err != nil {
 			if !errors.As(err, &fault) {
@@ -707,8 +713,30 @@ func fuzzScan(f *testing.F, ending string) {
 		if len(s.Corners)-len(s.Edges)+len(s.Facets) != 2 || !(s.Volume() > 0) {
 			t.Fatalf("a solid of %d facets is not closed", len(s.Facets))
 		}
+		for _, c := range s.Corners {
+			if x := c.Len(); math.IsNaN(x) || math.IsInf(x, 0) {
+				t.Fatalf("a corner at %v", c)
+			}
+		}
+		// Written out, the solid reads back.
+		var b bytes.Buffer
+		if err := WriteOBJ(&b, s); err != nil {
+			t.Fatal(err)
+		}
+		again, err := ReadScan(&b, "again.obj", ScanOptions{})
+		if err != nil {
+			t.Fatalf("what was written does not read: %v", err)
+		}
+		if again.OpenEdges+again.TangledEdges > 0 || math.Abs(again.Volume/s.Volume()-1) > 1e-6 {
+			t.Errorf("volume %g with %d open edges, was %g", again.Volume, again.OpenEdges, s.Volume())
+		}
 	})
 }
+
+// scanMemory is what reading a scan of so many bytes may set aside. Its hull, its flats
+// and the tables between corners, edges and triangles take some kilobytes a triangle; the
+// shortest face of a text format is ten bytes.
+func scanMemory(size int) int { return 2000 * size }
 
 func BenchmarkReadScan200k(b *testing.B) {
 	stone := mustProportions(b, "round", "", 8)

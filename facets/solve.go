@@ -634,12 +634,12 @@ func (v *solver) finish() (*Solution, error) {
 	return sol, nil
 }
 
-// facetName returns P1@6, or P1 for a facet without an index.
+// facetName returns P1@6, or P1 for a facet without an index, for a message.
 func facetName(tier string, index float64) string {
 	if math.IsNaN(index) {
-		return tier
+		return shorten(tier)
 	}
-	return tier + "@" + number(math.Round(index*1e4)/1e4)
+	return shorten(tier) + "@" + number(math.Round(index*1e4)/1e4)
 }
 
 // several lists names for a message, the first few of many.

@@ -85,15 +85,17 @@ func crowded(data []byte) *Fault {
 	}
 	for p.NextExpression() {
 		e := p.Expression()
-		parts := 0
-		for it := e.Key(); it.Next(); {
-			parts++
+		inside, parts := 0, partsOf(e)
+		if e.Kind == unstable.KeyValue {
+			var deeper int
+			inside, deeper = mostInside(e.Value())
+			parts = max(parts, deeper)
 		}
 		switch {
 		case parts > mostParts:
 			return tooMany(e, "parts in a key")
 		case e.Kind == unstable.KeyValue:
-			if keys += 1 + mostInside(e.Value()); keys > mostKeys {
+			if keys += 1 + inside; keys > mostKeys {
 				return tooMany(e, "keys in one table")
 			}
 		default:
@@ -106,20 +108,31 @@ func crowded(data []byte) *Fault {
 	return nil
 }
 
-// mostInside returns the number of keys of the largest inline table in a value.
-func mostInside(n *unstable.Node) int {
-	keys, inner := 0, 0
+// partsOf returns how many parts the key of an expression has.
+func partsOf(e *unstable.Node) (parts int) {
+	for it := e.Key(); it.Next(); {
+		parts++
+	}
+	return parts
+}
+
+// mostInside returns the number of keys of the largest inline table in a value, and of
+// the parts of the longest key in it.
+func mostInside(n *unstable.Node) (keys, parts int) {
+	inner := 0
 	for it := n.Children(); it.Next(); {
 		c := it.Node()
 		if c.Kind == unstable.KeyValue {
 			keys++
+			parts = max(parts, partsOf(c))
 			c = c.Value()
 		}
 		if c.Kind == unstable.Array || c.Kind == unstable.InlineTable {
-			inner = max(inner, mostInside(c))
+			k, p := mostInside(c)
+			inner, parts = max(inner, k), max(parts, p)
 		}
 	}
-	return max(keys, inner)
+	return max(keys, inner), parts
 }
 
 // splitBlocks parses a TOML text into its blocks. The error is a *Fault.

@@ -18,7 +18,11 @@ type document struct {
 	file   string
 	lines  map[string]int
 	faults Faults
+	more   int // faults beyond mostFaults
 }
+
+// mostFaults is how many faults of one file are told; the rest are counted.
+const mostFaults = 100
 
 // table is one table of a document. Entries that were asked for are struck off; those
 // left at close are unknown.
@@ -40,13 +44,26 @@ func (d *document) open(entries map[string]any, path, name string) *table {
 
 // fault notes a fault of the entry at path, or of the nearest table above it.
 func (d *document) fault(path, name, field, got, why, remedy string) {
+	if len(d.faults) == mostFaults {
+		d.more++
+		return
+	}
 	line := d.lines[path]
 	for above := path; line == 0 && above != ""; line = d.lines[above] {
 		above = above[:max(strings.LastIndexByte(above, '.'), 0)]
 	}
 	d.faults = append(d.faults, &Fault{
-		File: d.file, Line: line, Material: name, Field: field, Got: got, Why: why, Remedy: remedy,
+		File: d.file, Line: line, Material: shorten(name), Field: shorten(field), Got: shorten(got), Why: why, Remedy: remedy,
 	})
+}
+
+// shorten cuts a piece of the user's text to what a message can hold.
+func shorten(s string) string {
+	const most = 60
+	if r := []rune(s); len(r) > most {
+		return string(r[:most]) + "..."
+	}
+	return s
 }
 
 func (t *table) at(field string) string { return strings.TrimPrefix(t.path+"."+field, ".") }

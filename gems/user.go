@@ -49,6 +49,10 @@ func ReadMaterials(r io.Reader, file string) ([]*Material, error) {
 		return nil, Faults{{File: file, Why: "is larger than 1 MiB", Remedy: "give a file of materials"}}
 	}
 	data = bytes.TrimPrefix(data, []byte("\ufeff"))
+	if f := crowded(data); f != nil {
+		f.File = file
+		return nil, Faults{f}
+	}
 	var root map[string]any
 	if err := toml.Unmarshal(data, &root); err != nil {
 		return nil, Faults{notTOML(err, file)}
@@ -56,6 +60,10 @@ func ReadMaterials(r io.Reader, file string) ([]*Material, error) {
 	d := &document{file: file, lines: lineNumbers(data)}
 	ms := d.materials(root)
 	if err := d.faults.err(); err != nil {
+		if d.more > 0 {
+			return nil, append(d.faults, &Fault{File: file, Why: fmt.Sprintf("and %d more faults", d.more),
+				Remedy: "mend these first"})
+		}
 		return nil, err
 	}
 	return ms, nil

@@ -1,11 +1,15 @@
 package gems
 
 import (
+	"bytes"
 	"errors"
 	"math"
 	"os"
+	"strconv"
 	"strings"
 	"testing"
+
+	"pavilight/testdata/budget"
 )
 
 func TestReadSampleFile(t *testing.T) {
@@ -160,10 +164,18 @@ func FuzzReadMaterials(f *testing.F) {
 	f.Add([]byte("materials = 1\nmaterial = [{key = \"a\", source = \"s\", index = 1.5, colour = {ordinary = \"#123456\", thickness_mm = 1}}]\n"))
 	f.Add([]byte("[[material]]\n[material.colour]\n[[material.ray]]\n\"\" = 1\na.b = 2\n"))
 	f.Fuzz(func(t *testing.T, data []byte) {
-		ms, err := ReadMaterials(strings.NewReader(string(data)), "fuzz.toml")
+		var ms []*Material
+		var err error
+		budget.Hold(t, materialsMemory(len(data)), func() { ms, err = ReadMaterials(bytes.NewReader(data), "fuzz.toml") })
 		var faults Faults
 		if err != nil && (!errors.As(err, &faults) || len(faults) == 0 || ms != nil) {
 			t.Fatalf("not faults: %v", err)
+		}
+		if len(faults) > mostFaults+1 || err != nil && len(err.Error()) > 1000*len(faults) {
+			t.Errorf("%d faults, %d bytes in words", len(faults), len(err.Error()))
+		}
+		if l := Standard().With(ms...); len(l.Materials()) < len(Standard().Materials()) {
+			t.Error("bundled materials are gone")
 		}
 		for _, m := range ms {
 			lo, hi := m.Range()
@@ -171,10 +183,49 @@ func FuzzReadMaterials(f *testing.F) {
 				if n, err := m.Index(w); err != nil || !(n >= leastIndex && n <= greatestIndex) {
 					t.Fatalf("%s: index %g at %v, %v", m.Key, n, w, err)
 				}
-				m.Absorption.Coefficient(w)
+				if o, e := m.Absorption.Coefficient(w); !(o >= 0 && e >= 0) || math.IsInf(o+e, 0) {
+					t.Fatalf("%s: takes %g and %g per mm at %v", m.Key, o, e, w)
+				}
 			}
 			m.Describe().Entries()
 			m.Row()
 		}
 	})
+}
+
+// materialsMemory is what reading a file of so many bytes may set aside: the TOML package
+// keeps a tree of what is written, in which an entry of two bytes takes a few hundred.
+func materialsMemory(size int) int { return 1000 * size }
+
+// Files that would take long or much memory are refused before they do.
+func TestHostileMaterials(t *testing.T) {
+	head := "materials = 1\n"
+	numbered := func(line string) string {
+		var b strings.Builder
+		for i := 0; b.Len() < largestFile-100; i++ {
+			b.WriteString(strings.ReplaceAll(line, "N", strconv.Itoa(i)))
+		}
+		return b.String()
+	}
+	for _, row := range []struct{ name, text, want string }{
+		{"a hundred thousand keys", head + numbered("kN = 1\n"), "x.toml:101: the file has too many keys in one table; keep to 100"},
+		{"keys in line", head + "a = {" + numbered("kN = 1,") + "z = 1}\n", "too many keys in one table"},
+		{"tables", head + numbered("[kN]\n"), "too many tables"},
+		{"a long key", head + strings.Repeat("a.", 100) + "a = 1\n", "too many parts in a key"},
+		{"a long key in line", head + "x = {" + strings.Repeat("a.", largestFile/2-100) + "a = 1}\n", "too many parts in a key"},
+		{"lists in lists", head + "x = " + strings.Repeat("[", largestFile-100), "nested more than"},
+		{"tables in tables", head + "x = " + strings.Repeat("{a=", largestFile/3-100), "nested more than"},
+		{"materials", head + strings.Repeat("[[material]]\n", mostTables), "5000 of them; keep at most 1000"},
+		{"a long text", head + "x = \"" + strings.Repeat("y", largestFile-100) + "\"\n", "..."},
+		{"a giant number", head + "[[material]]\nkey = \"a\"\nsource = \"s\"\nindex = 1e999999999\n", "x.toml"},
+		{"many digits", head + "[[material]]\nkey = \"a\"\nsource = \"s\"\nindex = " + strings.Repeat("9", largestFile/2) + "\n", "x.toml"},
+	} {
+		var err error
+		budget.Hold(t, materialsMemory(len(row.text)), func() { _, err = ReadMaterials(strings.NewReader(row.text), "x.toml") })
+		if err == nil || !strings.Contains(err.Error(), row.want) {
+			t.Errorf("%s: %.200v, want %q in it", row.name, err, row.want)
+		} else if len(err.Error()) > 2000 {
+			t.Errorf("%s: %d bytes of message", row.name, len(err.Error()))
+		}
+	}
 }

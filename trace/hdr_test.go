@@ -13,6 +13,8 @@ import (
 	"github.com/go-gl/mathgl/mgl64"
 
 	"pavilight/facets"
+	"pavilight/gems"
+	"pavilight/testdata/budget"
 )
 
 // pixels is a panorama of RGBE pixels, row by row.
@@ -399,7 +401,11 @@ func FuzzReadPanorama(f *testing.F) {
 	f.Add([]byte("#?RGBE\n\n-Y 1 +X 2\n\x05\x05\x05\xff\x01\x01\x01\x01"))
 	f.Add([]byte("#?RADIANCE\nFORMAT=32-bit_rle_rgbe\n\n-Y 8192 +X 16384\n\x02\x02\x40\x00\xff"))
 	f.Fuzz(func(t *testing.T, data []byte) {
-		l, err := ReadPanorama(bytes.NewReader(data), "fuzz.hdr")
+		var l *Light
+		var err error
+		// keptWide × keptWide/2 texels and a row, however few bytes claim them.
+		const most = 3*4*keptWide*keptWide/2 + 64*mostWide
+		budget.Hold(t, most, func() { l, err = ReadPanorama(bytes.NewReader(data), "fuzz.hdr") })
 		if err != nil {
 			if !strings.HasPrefix(err.Error(), "fuzz.hdr: ") || len(err.Error()) > 400 {
 				t.Errorf("error %q", err)
@@ -409,6 +415,11 @@ func FuzzReadPanorama(f *testing.F) {
 		for _, d := range []mgl64.Vec3{{0, 0, 1}, {0.6, 0, 0.8}, {0, -0.8, 0.6}} {
 			if v := l.Luminance(d); !(v >= 0) || math.IsInf(v, 0) {
 				t.Errorf("luminance %v from %v", v, d)
+			}
+			for _, w := range []gems.Wavelength{400, 550, 700} {
+				if v := l.Radiance(d, w); !(v >= 0) || math.IsInf(v, 0) {
+					t.Errorf("radiance %v from %v at %v", v, d, w)
+				}
 			}
 		}
 	})

@@ -1,6 +1,8 @@
 package model
 
 import (
+	"bytes"
+	"encoding/json"
 	"os"
 	"os/exec"
 	"path/filepath"
@@ -10,6 +12,7 @@ import (
 	"testing/synctest"
 
 	"pavilight/facets"
+	"pavilight/testdata/budget"
 )
 
 // gonePID returns the number of a process that has ended.
@@ -103,4 +106,45 @@ func TestDamagedWorkIsSetAsideInWords(t *testing.T) {
 			t.Errorf("%s: %d files left, want the damaged one kept", name, len(left))
 		}
 	}
+}
+
+// Whatever the file holds, it is refused or is work whose plan can be kept and found again.
+func FuzzReadKept(f *testing.F) {
+	round, err := os.ReadFile("../../testdata/plans/rod.toml")
+	if err != nil {
+		f.Fatal(err)
+	}
+	whole, err := json.Marshal(kept{"/somewhere/mine.toml", string(round)})
+	if err != nil {
+		f.Fatal(err)
+	}
+	f.Add(whole)
+	f.Add([]byte(`{"path":"../../x\u0000","plan":"plan = 1"}`))
+	f.Add([]byte(`{"plan":` + strings.Repeat("[", 1000)))
+	f.Add([]byte(`{"path":1,"plan":null,"plan":"x","PLAN":"y"}`))
+	folder := f.TempDir()
+	file := filepath.Join(folder, "unsaved-0.json")
+	f.Fuzz(func(t *testing.T, data []byte) {
+		if err := os.WriteFile(file, data, 0o600); err != nil {
+			t.Fatal(err)
+		}
+		var work Recovered
+		var err error
+		budget.Hold(t, 2000*len(data), func() { work, err = readKept(file) })
+		if err != nil {
+			return
+		}
+		r := &Recovery{folder, filepath.Join(folder, "unsaved-1.json")}
+		if err := r.Keep(work.Plan, work.Path); err != nil {
+			t.Fatal(err)
+		}
+		again, err := readKept(r.own)
+		if err != nil {
+			t.Fatalf("what was kept is not found again: %v", err)
+		}
+		var a, b bytes.Buffer
+		if work.Plan.Write(&a) != nil || again.Plan.Write(&b) != nil || a.String() != b.String() || again.Path != work.Path {
+			t.Errorf("%q of %q became %q of %q", a.String(), work.Path, b.String(), again.Path)
+		}
+	})
 }

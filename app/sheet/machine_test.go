@@ -1,6 +1,7 @@
 package sheet
 
 import (
+	"bytes"
 	"errors"
 	"math"
 	"os"
@@ -11,6 +12,8 @@ import (
 	"github.com/go-gl/mathgl/mgl64"
 
 	"pavilight/facets"
+	"pavilight/gems"
+	"pavilight/testdata/budget"
 )
 
 func TestMachineTemplateReads(t *testing.T) {
@@ -170,4 +173,59 @@ func farthestCorner(a, b *facets.Stone) float64 {
 		most = max(most, near)
 	}
 	return most
+}
+
+// Whatever the text is, it is refused with remedies or describes a machine on which a
+// sheet can be worked out.
+func FuzzReadMachine(f *testing.F) {
+	f.Add([]byte(MachineTemplate))
+	f.Add([]byte("machine = 1\ngear = 3\npavilion_angle_offset = -90\ncrown_angle_offset = 90\nangle_step = 5\n"))
+	f.Add([]byte("machine = 1\ngear = 1000\nangle_step = 0.001\ncheater = 60\ncrown_numbers = 'same'\ntransfer_index = 1000\n"))
+	f.Add([]byte("\ufeffmachine = 1\r\nname = \"\\u0000\\u001b[2J\"\r\ngrit = ['']\r\n"))
+	f.Add([]byte("machine = 1\ntable_adapter = inf\ncheater = -0.0\ntransfer_index = 1e-300\n"))
+	plan, err := facets.OpenPlan("../../testdata/plans/rod.toml")
+	if err != nil {
+		f.Fatal(err)
+	}
+	material, err := gems.Standard().Find(plan.Material.Key)
+	if err != nil {
+		f.Fatal(err)
+	}
+	f.Fuzz(func(t *testing.T, data []byte) {
+		var m Machine
+		var err error
+		budget.Hold(t, 2000*len(data), func() { m, err = ReadMachine(bytes.NewReader(data), "m.toml") })
+		var faults facets.Faults
+		if err != nil {
+			if !errors.As(err, &faults) || len(faults) == 0 {
+				t.Fatalf("%v is no fault", err)
+			}
+			for _, one := range faults {
+				if one.Why == "" || one.Remedy == "" {
+					t.Errorf("%v has no reason or remedy", one)
+				}
+			}
+			return
+		}
+		s, err := New(Job{Plan: plan, Material: material, Machine: m, Paper: Papers()[0]})
+		if err != nil {
+			if !errors.As(err, &faults) {
+				t.Fatalf("%v is no fault", err)
+			}
+			return
+		}
+		for i := range s.Rows {
+			if a := s.Rows[i].Reading.Degrees(); math.IsNaN(a) || math.IsInf(a, 0) {
+				t.Errorf("%s is set to %g", s.Rows[i].Tier.Name, a)
+			}
+			for _, set := range s.Rows[i].Settings {
+				if set.Tooth < 0 || set.Tooth > s.Machine.Gear || math.IsNaN(set.Cheater.Degrees()) {
+					t.Errorf("%s stands at %+v on a gear of %d", s.Rows[i].Tier.Name, set, s.Machine.Gear)
+				}
+			}
+		}
+		if pages := s.Pages(); len(pages) == 0 {
+			t.Error("no page")
+		}
+	})
 }

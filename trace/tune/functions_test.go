@@ -12,14 +12,17 @@ import (
 	"time"
 
 	"pavilight/facets"
+	"pavilight/gems"
+	"pavilight/trace"
 )
 
 // plainJudge returns a judge of a plain function of the variables instead of stones:
 // the goal is its negative. Every answer carries independent normal noise whose standard
 // deviation falls with the root of the rays, as a traced stone's does.
 func plainJudge(vs []Variable, noise float64, f func(x []float64) float64) *judge {
+	one := Case{Surrounding: trace.Surrounding{Medium: &gems.Material{Key: "air"}}}
 	j := &judge{
-		Problem: &Problem{Variables: vs, Goal: Goal{Aims: []Aim{{LightReturn, 1}}}, Seed: 1},
+		Problem: &Problem{Variables: vs, Goal: Goal{Aims: []Aim{{LightReturn, 1}}, Cases: []Case{one}}, Seed: 1},
 		known:   map[string]sight{}, asked: map[string]bool{},
 	}
 	j.observe = func(_ context.Context, x []float64, e effort) (sight, error) {

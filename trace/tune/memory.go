@@ -9,6 +9,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"math"
 	"os"
 )
 
@@ -26,8 +27,11 @@ type Memory struct {
 	err     error // why no more is written
 }
 
-// mostMemory bounds the file that is read back.
-const mostMemory = 256 << 20
+// mostMemory bounds the file that is read back, mostMemoryLine a line of it.
+const (
+	mostMemory     = 256 << 20
+	mostMemoryLine = 1 << 20
+)
 
 type memoryHead struct {
 	Pavilight string `json:"pavilight"`
@@ -50,7 +54,7 @@ func (m *Memory) open(j *judge) error {
 	if err != nil {
 		return &MemoryError{m.Path, err}
 	}
-	good, err := readMemory(io.LimitReader(f, mostMemory), head, j.known)
+	good, err := readMemory(io.LimitReader(f, mostMemory), head, j.fits, j.known)
 	if err == nil && good == 0 {
 		good, err = writeHead(f, head)
 	}
@@ -127,12 +131,44 @@ func writeHead(f *os.File, head memoryHead) (int64, error) {
 	return int64(n), err
 }
 
+// fits reports whether what a line says was seen is an answer to this problem's
+// questions: as many cases and measures, numbers of sensible size, a reason where there
+// is no answer.
+func (j *judge) fits(s sight) bool {
+	const most = 1e6 // beyond any measure, in its unit
+	if len(s.Values) == 0 {
+		return len(s.Errors) == 0 && len(s.Words) > 0 && s.Short >= 0
+	}
+	cases, aims := len(j.Goal.Cases), len(j.Goal.Aims)
+	if len(s.Values) != cases || len(s.Errors) != cases || s.Pictures < 0 || s.Pictures == 1 || !(s.Short >= 0) {
+		return false
+	}
+	for k := range s.Values {
+		if len(s.Values[k]) != aims || len(s.Errors[k]) != aims {
+			return false
+		}
+		for i := range s.Values[k] {
+			if v, e := s.Values[k][i], s.Errors[k][i]; !(math.Abs(v) <= most && e >= 0 && e <= most) {
+				return false
+			}
+		}
+	}
+	return true
+}
+
 // readMemory reads whole lines into known and returns where the last one ends; 0 for
-// an empty file and for one whose first line was cut short.
-func readMemory(r io.Reader, want memoryHead, known map[string]sight) (good int64, err error) {
-	in := bufio.NewReader(r)
+// an empty file and for one whose first line was cut short. Lines that do not fit are
+// passed over: they are asked again.
+func readMemory(r io.Reader, want memoryHead, fits func(sight) bool, known map[string]sight) (good int64, err error) {
+	in := bufio.NewReaderSize(r, mostMemoryLine)
 	for n := 0; ; n++ {
-		line, err := in.ReadBytes('\n')
+		line, err := in.ReadSlice('\n')
+		if errors.Is(err, bufio.ErrBufferFull) {
+			if n == 0 {
+				return 0, errNoMemory
+			}
+			return good, nil // no line of ours is so long
+		}
 		if errors.Is(err, io.EOF) {
 			if n == 0 && !bytes.HasPrefix(headLine(want), line) {
 				return 0, errNoMemory // rather than cut off somebody's text
@@ -155,7 +191,9 @@ func readMemory(r io.Reader, want memoryHead, known map[string]sight) (good int6
 			if json.Unmarshal(line, &l) != nil {
 				return good, nil // garbage from here on, as after a crash: it is asked again
 			}
-			known[l.Key] = l.sight
+			if fits(l.sight) {
+				known[l.Key] = l.sight
+			}
 		}
 		good += int64(len(line))
 	}

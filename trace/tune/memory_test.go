@@ -1,15 +1,20 @@
 package tune
 
 import (
+	"bytes"
 	"context"
 	"errors"
 	"math"
 	"os"
 	"os/exec"
 	"path/filepath"
+	"reflect"
 	"strings"
 	"testing"
 	"time"
+
+	"pavilight/gems"
+	"pavilight/testdata/budget"
 )
 
 // keptJudge returns a judge of a plain function with a memory.
@@ -180,4 +185,99 @@ func TestMemoryThatCannotBeWritten(t *testing.T) {
 	if left, _ := os.ReadFile(path); string(left) != string(whole) {
 		t.Errorf("the file holds %q", left)
 	}
+}
+
+// Lines of the right form that answer other questions, or no question, are passed over.
+func TestMemoryThatDoesNotFit(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "seen")
+	_, m := keptJudge(t, path, 0)
+	m.Close()
+	head, err := os.ReadFile(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	const name = `{"key":"1 2 12000 0 16 1 false",`
+	for what, line := range map[string]string{
+		"no values":             name + `"short":1}`,
+		"two cases":             name + `"values":[[0.5],[0.5]],"errors":[[0.1],[0.1]]}`,
+		"no measure":            name + `"values":[[]],"errors":[[]]}`,
+		"two measures":          name + `"values":[[0.5,0.5]],"errors":[[0.1,0.1]]}`,
+		"no errors":             name + `"values":[[0.5]]}`,
+		"an error below 0":      name + `"values":[[0.5]],"errors":[[-0.1]]}`,
+		"a giant":               name + `"values":[[1e300]],"errors":[[0.1]]}`,
+		"a single picture":      name + `"values":[[0.5]],"errors":[[0.1]],"pictures":1}`,
+		"less than no distance": name + `"words":["too thin"],"short":-5}`,
+	} {
+		good := name + `"values":[[0.25]],"errors":[[0.1]]}`
+		if err := os.WriteFile(path, []byte(string(head)+line+"\n"+strings.Replace(good, "1 2", "3 4", 1)+"\n"), 0o600); err != nil {
+			t.Fatal(err)
+		}
+		j, m := keptJudge(t, path, 0)
+		m.Close()
+		if _, ok := j.known["3 4 12000 0 16 1 false"]; !ok || len(j.known) != 1 {
+			t.Errorf("%s: %v is remembered, want the line after it alone", what, j.known)
+		}
+	}
+}
+
+// Whatever the file holds, it is left alone with words, or what is read from it answers
+// questions of the problem, and it is kept up to the first line that nobody wrote.
+func FuzzReadMemory(f *testing.F) {
+	path := filepath.Join(f.TempDir(), "seen")
+	_, m := keptJudge(f, path, 0)
+	m.Close()
+	head, err := os.ReadFile(path)
+	if err != nil {
+		f.Fatal(err)
+	}
+	f.Add(true, []byte(`{"key":"1 2 12000 0 16 1 false","values":[[0.5]],"errors":[[0.1]]}`+"\n"))
+	f.Add(true, []byte(`{"key":"1 2 12000 0 16 1 false","words":["the girdle is thin"],"short":3.5}`+"\n{"))
+	f.Add(true, []byte(`{"key":"","values":[[],[1e999]],"errors":null,"pictures":-1}`+"\n\x00\n"))
+	f.Add(false, []byte(`{"pavilight":"what was seen in tuning 1","purpose":""}`+"\n"))
+	f.Add(false, []byte("dear diary\n"))
+	f.Add(false, []byte{})
+	f.Fuzz(func(t *testing.T, ours bool, data []byte) {
+		if ours {
+			data = append(bytes.Clone(head), data...)
+		}
+		if err := os.WriteFile(path, data, 0o600); err != nil {
+			t.Fatal(err)
+		}
+		open := func() (*judge, error) {
+			j := plainJudge(span(2, -2, 2, 0), 0.001, func([]float64) float64 { return 0 })
+			j.Material = &gems.Material{Key: "quartz"}
+			m := &Memory{Path: path, Purpose: "a plan"}
+			defer m.Close()
+			return j, m.open(j)
+		}
+		var j *judge
+		var err error
+		budget.Hold(t, 100*len(data)+4*mostMemoryLine, func() { j, err = open() })
+		after, readErr := os.ReadFile(path)
+		if readErr != nil {
+			t.Fatal(readErr)
+		}
+		if err != nil {
+			var fault *MemoryError
+			if !errors.As(err, &fault) || !bytes.Equal(after, data) {
+				t.Fatalf("%v; the file became %q", err, after)
+			}
+			return
+		}
+		begun := bytes.HasPrefix(head, data) && bytes.Equal(after, head) // its first line was cut short, or there was none
+		if !begun && !bytes.HasPrefix(data, after) || !bytes.HasPrefix(after, head) {
+			t.Fatalf("the file became %q", after)
+		}
+		for name, s := range j.known {
+			trial := j.Goal.weigh([]float64{1, 2}, s)
+			if math.IsNaN(trial.Score) || math.IsInf(trial.Score, 0) || !(trial.Error >= 0) ||
+				!trial.Seen && len(trial.Words) == 0 || trial.Seen && len(trial.Measures) != 1 {
+				t.Errorf("%q: %+v", name, trial)
+			}
+		}
+		again, err := open()
+		if err != nil || !reflect.DeepEqual(again.known, j.known) {
+			t.Errorf("read again: %v, %d answers, were %d", err, len(again.known), len(j.known))
+		}
+	})
 }
