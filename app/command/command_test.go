@@ -121,7 +121,7 @@ func TestBadInput(t *testing.T) {
 		{"proportions of nothing known", []string{"look", "--round", "table=56"}, CommandFault, []string{"--material"}},
 		{"an unknown flag", []string{"look", "--sparkle"}, CommandFault, []string{"--sparkle"}},
 		{"a flag of another command", []string{"check", "--tilt", "5"}, CommandFault, []string{"--tilt"}},
-		{"two plans", []string{"look", "a.toml", "b.toml"}, CommandFault, []string{"b.toml"}},
+		{"two plans", []string{"check", "a.toml", "b.toml"}, CommandFault, []string{"b.toml"}},
 		{"a value left out", []string{"look", "--out", "--json"}, CommandFault, []string{"--out", "value"}},
 		{"a number left out", []string{"look", "--tilt"}, CommandFault, []string{"--tilt", "number"}},
 		{"a tilt out of range", []string{"look", "--tilt", "95"}, CommandFault, []string{"--tilt", "95", "-89 to 89 degrees"}},

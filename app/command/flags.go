@@ -44,6 +44,18 @@ type call struct {
 	json bool
 
 	library *gems.Library // of all materials at hand
+
+	// inSweep says that this is one job of many: what is told must not depend on the
+	// time it takes, and there is no progress of its own.
+	inSweep bool
+}
+
+// progress returns what shows how far the command has come.
+func (c call) progress() *progress {
+	if c.inSweep {
+		return newProgress(io.Discard, false)
+	}
+	return newProgress(c.env.Stderr, c.env.Terminal)
 }
 
 // warn prints a warning.
@@ -96,7 +108,11 @@ func run(ctx context.Context, args []string, env Environment, out io.Writer) err
 	if err != nil {
 		return inputFault(err)
 	}
-	return k.Run(call{Context: ctx, env: env, out: out, json: l.JSON, library: library})
+	c := call{Context: ctx, env: env, out: out, json: l.JSON, library: library}
+	if s := newSweeping(c, parser, &l, k); s != nil {
+		return s.run()
+	}
+	return k.Run(c)
 }
 
 // windowAsked reports whether the arguments ask for the window, and on which file:

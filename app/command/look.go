@@ -19,6 +19,7 @@ import (
 // lookCommand traces a stone and prints its ledgers.
 type lookCommand struct {
 	subjectFlags
+	sweepFlags
 	sceneFlags
 	Tilt        float64 `type:"number" least:"-89" most:"89" unit:"degrees" placeholder:"DEG" help:"How far the stone is rocked, -89 to 89 degrees (0)."`
 	Turn        float64 `type:"number" least:"-360" most:"360" unit:"degrees" placeholder:"DEG" help:"Toward which azimuth it is rocked, -360 to 360 degrees (0)."`
@@ -34,7 +35,7 @@ type lookCommand struct {
 	Colour      bool    `help:"Show the stone in true colour under the light too, and measure what an eye makes of it: dark area, contrast, fire, sparkle."`
 	Paths       bool    `help:"Tell the mean way of the light inside the stone."`
 	Tiers       bool    `help:"Tell by which tiers light is returned and leaks, in every surrounding."`
-	Out         string  `type:"word" placeholder:"DIR" help:"Write the maps as pictures into this folder."`
+	Out         string  `type:"word" placeholder:"DIR" help:"Write the maps as pictures into this folder; of a sweep the results, results.jsonl and results.csv."`
 }
 
 // lookResult is what look prints as JSON.
@@ -73,7 +74,7 @@ type lookMedium struct {
 	LeakyArea     float64      `json:"leaky_area"`
 	WindowedArea  float64      `json:"windowed_area"`
 	Segments      int64        `json:"segments"`
-	Seconds       float64      `json:"seconds"`
+	Seconds       float64      `json:"seconds,omitempty"`        // left out in a sweep, whose results repeat to the bit
 	PathLengthMM  *float64     `json:"path_length_mm,omitempty"` // only where it was asked for
 	Seen          *lookSeen    `json:"seen,omitempty"`           // likewise
 	Tiers         []lookTier   `json:"tiers,omitempty"`          // likewise
@@ -168,7 +169,7 @@ func (l *lookCommand) Run(c call) error {
 			return err
 		}
 	}
-	bar := newProgress(c.env.Stderr, c.env.Terminal)
+	bar := c.progress()
 	ledgers := 1.0 // share of the work
 	if l.Colour {
 		ledgers = 0.3
@@ -211,6 +212,11 @@ func (l *lookCommand) Run(c call) error {
 		}
 	}
 	report := l.report(s, scene, result, looks)
+	for k := range report.Media {
+		if c.inSweep {
+			report.Media[k].Seconds = 0
+		}
+	}
 	for k := range doors {
 		report.Media[k].Tiers = lookTiers(doors[k])
 	}

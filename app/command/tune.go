@@ -18,6 +18,7 @@ import (
 // tuneCommand searches for better angles.
 type tuneCommand struct {
 	subjectFlags
+	sweepFlags
 	Vary string  `type:"word" placeholder:"NAMES" help:"What may change: tiers, or proportions, with commas between, each with limits if need be: P1=40..43,C2. Tiers joined by + change by as much: P1a+P1b. C1.girdle is the size at which that tier's stop rule stops. Without it the pavilion mains and the crown mains."`
 	Step float64 `default:"0.1" type:"number" least:"0.001" most:"5" unit:"degrees" placeholder:"DEG" help:"The smallest step of an angle that the machine can set, 0.001 to 5 degrees (${default})."`
 	tuneGoal
@@ -34,7 +35,7 @@ type tuneCommand struct {
 
 	Keep    string `type:"word" placeholder:"FILE" help:"Remember in this file what was seen; a run that was stopped goes on from it, one that ended is shown again."`
 	Write   string `type:"word" placeholder:"FILE" help:"Write the plan that was found into this file (.toml), comments kept."`
-	Out     string `type:"word" placeholder:"DIR" help:"Write the pictures and tables of --field, --front or --tolerance into this folder."`
+	Out     string `type:"word" placeholder:"DIR" help:"Write the pictures and tables of --field, --front or --tolerance into this folder; of a sweep the results, results.jsonl and results.csv."`
 	CSV     bool   `name:"csv" help:"Print the results as CSV."`
 	Seed    uint64 `default:"1" type:"number" placeholder:"N" help:"Seed of the random numbers; the same seed gives the same results (${default})."`
 	Workers int    `type:"number" least:"0" most:"1024" unit:"(0 for all cores)" placeholder:"N" help:"How many cores may trace, 0 to 1024; 0 for all (0)."`
@@ -59,7 +60,7 @@ type tuning struct {
 
 // Run does what the flags ask for.
 func (k *tuneCommand) Run(c call) error {
-	t := &tuning{tuneCommand: k, call: c, began: time.Now(), bar: newProgress(c.env.Stderr, c.env.Terminal)}
+	t := &tuning{tuneCommand: k, call: c, began: time.Now(), bar: c.progress()}
 	work, err := k.work()
 	if err != nil {
 		return err

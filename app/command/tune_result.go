@@ -32,7 +32,7 @@ type tuneAbout struct {
 	HeadDeg     float64        `json:"head_deg"`
 	Variables   []tuneVariable `json:"variables"`
 	Seed        uint64         `json:"seed"`
-	Seconds     float64        `json:"seconds"`
+	Seconds     float64        `json:"seconds,omitempty"` // left out in a sweep
 	Interrupted bool           `json:"interrupted"`
 }
 
@@ -78,6 +78,9 @@ func (t *tuning) about(stopped error) tuneAbout {
 	a := tuneAbout{
 		Plan: t.name, Material: t.material.Key, BodyColour: t.material.Describe().BodyColour, WidthMM: t.width,
 		Worst: p.Goal.Worst, SteadyDeg: p.Steady.Degrees(), HeadDeg: p.Head.Degrees(), Seed: p.Seed, Seconds: time.Since(t.began).Seconds(), Interrupted: stopped != nil,
+	}
+	if t.inSweep {
+		a.Seconds = 0
 	}
 	for _, aim := range p.Goal.Aims {
 		a.Goal = append(a.Goal, tuneAim{aim.Measure.String(), aim.Weight})

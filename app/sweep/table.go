@@ -1,0 +1,189 @@
+package sweep
+
+import (
+	"bytes"
+	"encoding/csv"
+	"encoding/json"
+	"fmt"
+	"io"
+	"slices"
+	"strings"
+)
+
+// cells are the cells of a line of the table by the names of their columns, which are
+// in the order in which they were met.
+type cells struct {
+	names  []string
+	values map[string]string
+}
+
+func (c *cells) put(name, value string) {
+	if _, there := c.values[name]; !there {
+		c.names = append(c.names, name)
+	}
+	c.values[name] = value
+}
+
+// makesLines reports whether a list in a result makes lines of its own: the surroundings
+// of a look, the stones of a trade-off, the cells of a field.
+func makesLines(name string) bool { return name == "media" || name == "points" || name == "cells" }
+
+// WriteTable writes the results as CSV for people: a line a job, or one for each of the
+// surroundings, stones or cells that it has. Columns are named as in the JSON lines,
+// with points between the names of things that lie in each other; lists of numbers are
+// left out. A text that a spreadsheet would take for a formula gets an apostrophe.
+func (r *Results) WriteTable(w io.Writer) error {
+	var lines []cells
+	var settings, columns []string
+	last := []string{"notes", "error", "key"}
+	for i := range r.lines {
+		row := &r.lines[i].Row
+		var values map[string]json.RawMessage
+		if err := json.Unmarshal(row.Settings, &values); err != nil {
+			return fmt.Errorf("job %d: %w", row.Job, err)
+		}
+		for name := range values {
+			if !slices.Contains(settings, name) {
+				settings = append(settings, name)
+			}
+		}
+		of, err := tableLines(row, values)
+		if err != nil {
+			return fmt.Errorf("job %d: %w", row.Job, err)
+		}
+		lines = append(lines, of...)
+	}
+	slices.Sort(settings)
+	known := map[string]bool{}
+	for _, l := range lines {
+		for _, name := range l.names {
+			if !known[name] {
+				known[name] = true
+				columns = append(columns, name)
+			}
+		}
+	}
+	head := []string{"job", "file"}
+	for _, s := range settings {
+		head = append(head, "settings."+s)
+	}
+	for _, c := range columns {
+		if !slices.Contains(head, c) && !slices.Contains(last, c) {
+			head = append(head, c)
+		}
+	}
+	head = append(head, last...)
+	out := csv.NewWriter(w)
+	if err := out.Write(head); err != nil {
+		return err
+	}
+	record := make([]string, len(head))
+	for _, l := range lines {
+		for i, name := range head {
+			record[i] = l.values[name]
+		}
+		if err := out.Write(record); err != nil {
+			return err
+		}
+	}
+	out.Flush()
+	return out.Error()
+}
+
+// tableLines returns the lines of the table for a row.
+func tableLines(row *Row, settings map[string]json.RawMessage) ([]cells, error) {
+	about := cells{values: map[string]string{}}
+	about.put("job", fmt.Sprint(row.Job))
+	about.put("file", safe(row.File))
+	for name, value := range settings {
+		if _, err := flatten(&about, "settings."+name, value); err != nil {
+			return nil, err
+		}
+	}
+	about.names = nil // their columns are placed by name
+	about.put("notes", safe(strings.Join(row.Notes, "; ")))
+	about.put("error", safe(strings.Join(strings.Split(row.Error, "\n"), "; ")))
+	about.put("key", safe(row.Key))
+	if row.Result == nil {
+		return []cells{about}, nil
+	}
+	many, err := flatten(&about, "", row.Result)
+	if err != nil {
+		return nil, err
+	}
+	if len(many) == 0 {
+		return []cells{about}, nil
+	}
+	var lines []cells
+	for _, each := range many {
+		l := cells{slices.Clone(about.names), map[string]string{}}
+		for name, value := range about.values {
+			l.values[name] = value
+		}
+		if _, err := flatten(&l, "", each); err != nil {
+			return nil, err
+		}
+		lines = append(lines, l)
+	}
+	return lines, nil
+}
+
+// flatten puts what a JSON value holds into cells, in its order, and returns the items
+// of a list that makes lines of its own.
+func flatten(c *cells, name string, text []byte) (many []json.RawMessage, err error) {
+	text = bytes.TrimSpace(text)
+	if len(text) == 0 {
+		return nil, io.ErrUnexpectedEOF
+	}
+	switch text[0] {
+	case '{':
+		d := json.NewDecoder(bytes.NewReader(text))
+		if _, err := d.Token(); err != nil {
+			return nil, err
+		}
+		for d.More() {
+			key, err := d.Token()
+			if err != nil {
+				return nil, err
+			}
+			var value json.RawMessage
+			if err := d.Decode(&value); err != nil {
+				return nil, err
+			}
+			inner, _ := key.(string)
+			if name == "" && makesLines(inner) && json.Unmarshal(value, &many) == nil {
+				continue
+			}
+			if name != "" {
+				inner = name + "." + inner
+			}
+			if _, err := flatten(c, inner, value); err != nil {
+				return nil, err
+			}
+		}
+	case '[':
+		var words []string
+		if json.Unmarshal(text, &words) == nil && len(words) > 0 {
+			c.put(name, safe(strings.Join(words, "; ")))
+		}
+	case '"':
+		var word string
+		if err := json.Unmarshal(text, &word); err != nil {
+			return nil, err
+		}
+		c.put(name, safe(word))
+	case 'n':
+		c.put(name, "")
+	default:
+		c.put(name, string(text))
+	}
+	return many, nil
+}
+
+// safe returns a text that a spreadsheet takes for text and not for a formula.
+func safe(text string) string {
+	if text != "" && strings.ContainsRune("=+-@\t\r", rune(text[0])) {
+		return "'" + text
+	}
+	return text
+}
