@@ -52,7 +52,7 @@ func into(t testing.TB, s *facets.Stone, tilt, x, n float64) *Path {
 			}
 		}
 	}
-	return tr.path(facet, tr.body.relative(mgl64.Vec3{x, 0.3, top}), n, 1)
+	return tr.path(facet, tr.body.relative(mgl64.Vec3{x, 0.3, top}), n, 1, false)
 }
 
 // TestHardingCritical has rays just inside and just outside the paper's limits.

@@ -33,7 +33,7 @@ func mustFollow(t *testing.T, tr *tracer, n, m, u, v float64) *Path {
 	if !ok {
 		t.Fatalf("the ray at %v, %v passes beside the stone", u, v)
 	}
-	return tr.path(facet, x, n, m)
+	return tr.path(facet, x, n, m, false)
 }
 
 // TestSlab is a plane-parallel plate, all orders of reflection summed without
@@ -238,13 +238,13 @@ func TestReversibility(t *testing.T) {
 				if !ok {
 					continue
 				}
-				p := tr.path(facet, x, 1.7, 1)
+				p := tr.path(facet, x, 1.7, 1, false)
 				for k, b := range p.Bounces {
 					if b.Left < 1e-3 {
 						continue
 					}
 					back := prepare(t, s, toward(b.Leaving), averaged)
-					q := back.path(b.Facet, fromMgl(b.At).plus(-1, back.body.middle).scale(1/back.body.unit), 1.7, 1)
+					q := back.path(b.Facet, fromMgl(b.At).plus(-1, back.body.middle).scale(1/back.body.unit), 1.7, 1, false)
 					if len(q.Bounces) <= k || q.Bounces[k].Facet != facet {
 						t.Fatalf("%s: the way back of bounce %d misses facet %d", name, k, facet)
 					}

@@ -19,6 +19,8 @@ type Path struct {
 	HasCritical bool
 	AsIfSingly  bool // the stone refracts doubly; shown is a ray of its ordinary index, polarised as in a stone of that index
 
+	Dish      bool         // the medium is a liquid with a flat surface; the eye is in air
+	Liquid    float64      // share that its surface mirrors before the ray reaches the stone; 0 without a dish
 	Facet     int          // of the stone, where the ray enters
 	Entry     mgl64.Vec3   // mm
 	Incidence facets.Angle // on that facet, from its normal
@@ -37,9 +39,10 @@ type Bounce struct {
 	Arrived   float64      // share of the viewing ray that arrives
 	Stayed    float64      // share that is reflected and goes on
 	Left      float64      // share that leaves here
-	Leaving   mgl64.Vec3   // direction in which it leaves, unit; zero under total reflection
-	FromEye   facets.Angle // between that direction and the eye's
-	Goes      Quantity     // Returned, Head or Leaked: the entry it counts in
+	Leaving   mgl64.Vec3   // direction in which it leaves the stone, unit; zero under total reflection
+	Back      float64      // share that the liquid's surface in a dish sends back down, which is not followed
+	FromEye   facets.Angle // between the eye's direction and that in which the rest leaves, in air above a dish
+	Goes      Quantity     // Returned, Head or Leaked: the entry the rest counts in; Unresolved where all is sent back
 }
 
 // The share below which a shown path ends, and the most bounces it shows.
@@ -49,8 +52,8 @@ const (
 )
 
 // Follow follows the viewing ray of a distant eye through one point of the picture in
-// one of the scene's surroundings, which must be one medium all around, without films
-// and body colour, until less than 1e-4 of it is left inside or after 500 bounces. x
+// one of the scene's surroundings, a medium all around or a dish, without films and body
+// colour, until less than 1e-4 of it is left inside or after 500 bounces. x
 // and y run from 0 to 1 across the picture from its top left corner; the
 // wavelength is the settings', the sodium D line for the spectrum. ok is false
 // where the ray passes beside the stone. In a doubly refracting stone a ray parts into
@@ -64,8 +67,8 @@ func Follow(scene Scene, column int, settings Settings, x, y float64) (p *Path, 
 		w = gems.LineD
 	}
 	around := scene.Surroundings[column]
-	if around.Dish || len(around.Tiers) > 0 {
-		return nil, false, errors.New("a single ray is followed in one medium all around only")
+	if len(around.Tiers) > 0 {
+		return nil, false, errors.New("a single ray is followed where all tiers touch one medium")
 	}
 	n, err := scene.Material.Index(w)
 	if err != nil {
@@ -84,13 +87,14 @@ func Follow(scene Scene, column int, settings Settings, x, y float64) (p *Path, 
 	if !ok {
 		return nil, false, nil
 	}
-	p = t.path(facet, at, n, m)
+	p = t.path(facet, at, n, m, around.Dish)
 	p.Wavelength, p.AsIfSingly = w, scene.double()
 	return p, true, nil
 }
 
-// path follows a ray that enters through a facet at x.
-func (t *tracer) path(facet int, x vec, n, m float64) *Path {
+// path follows a ray that enters through a facet at x. Light from the eye meets the
+// surface of a dish head-on, so it goes straight on.
+func (t *tracer) path(facet int, x vec, n, m float64, inDish bool) *Path {
 	b, eye := t.body, t.outline.eye
 	cosI := t.toEye[facet]
 	at := Fresnel(m, n, cosI)
@@ -99,15 +103,20 @@ func (t *tracer) path(facet int, x vec, n, m float64) *Path {
 		Facet:     facet,
 		Entry:     b.place(x),
 		Incidence: facets.Angle(math.Acos(min(1, cosI))),
-		Surface:   at.Mean(),
+		Dish:      inDish,
 		Mirrored:  eye.scale(-1).plus(2*cosI, b.normal[facet]).mgl(),
 	}
 	p.Critical, p.HasCritical = CriticalAngle(n, m)
+	if inDish {
+		p.Liquid = Fresnel(1, m, 1).Mean()
+	}
+	p.Surface = (1 - p.Liquid) * at.Mean()
 	if at.Total {
 		return p
 	}
 	dir := refract(eye.scale(-1), b.normal[facet].scale(-1), m/n, cosI, at.CosT)
 	light := enterBeam(at, dir, b.normal[facet])
+	light.grow(light.i * (1 - p.Liquid))
 	for len(p.Bounces) < mostShown && light.i >= leastShown {
 		j, s := b.exit(x, dir)
 		x = x.plus(s, dir)
@@ -117,6 +126,18 @@ func (t *tracer) path(facet int, x vec, n, m float64) *Path {
 			Facet: j, At: b.place(x), Incidence: facets.Angle(math.Acos(cosI)),
 			Total: at.Total, Arrived: light.i,
 		}
+		out, through := vec{}, beam{}
+		if !at.Total {
+			out = refract(dir, b.normal[j], n/m, cosI, at.CosT)
+			c := plainCrossing(n, m, cosI)
+			if t.averaged {
+				light.forget()
+			}
+			_, through = light.meet(&c, dir, b.normal[j], out)
+			if t.averaged {
+				through.forget()
+			}
+		}
 		if t.averaged {
 			step.Left = light.average(at)
 		} else {
@@ -124,10 +145,17 @@ func (t *tracer) path(facet int, x vec, n, m float64) *Path {
 		}
 		step.Stayed = light.i
 		if !at.Total {
-			out := refract(dir, b.normal[j], n/m, cosI, at.CosT)
 			up := out.dot(eye)
-			step.Leaving, step.FromEye = out.mgl(), facets.Angle(math.Acos(max(-1, min(1, up))))
-			step.Goes = t.goes(up)
+			step.Leaving, step.Goes = out.mgl(), t.goes(up)
+			if inDish && up > 0 {
+				surface := plainCrossing(m, 1, min(1, up))
+				back, _ := through.meet(&surface, out, eye, out)
+				up, step.Back, step.Goes = surface.cosT, back.i, t.goes(surface.cosT)
+				if surface.cosT == 0 {
+					step.Goes = Unresolved
+				}
+			}
+			step.FromEye = facets.Angle(math.Acos(max(-1, min(1, up))))
 		}
 		p.Bounces = append(p.Bounces, step)
 		dir = dir.plus(-2*cosI, b.normal[j])

@@ -93,6 +93,57 @@ func TestDish(t *testing.T) {
 	}
 }
 
+// TestPathInDish compares single rays in a dish with the general tracer, whose surface of
+// the liquid lies so high that what it sends back does not meet the stone again.
+func TestPathInDish(t *testing.T) {
+	rng := rand.New(rand.NewPCG(8, 5))
+	const source = "the general tracer"
+	for name, s := range each(stones(t)) {
+		for _, averaged := range []bool{false, true} {
+			liquid, stone := plain(t, "liquid", 1.477), plain(t, "stone", 1.76)
+			tr := general(t, s, View{Tilt: 0.13, Turn: 2}, liquid, averaged)
+			tr.headCos, tr.faint = math.Cos(10*math.Pi/180), 1e-12
+			tr.dish = &dish{liquid, 1e6}
+			for range 5 {
+				facet, x, ok := tr.outline.enter(tr.outline.half*(2*rng.Float64()-1), tr.outline.half*(2*rng.Float64()-1))
+				if !ok {
+					continue
+				}
+				var unused sums
+				want := tr.send(facet, x, tr.outline.eye.scale(-1), at550(tr, stone), 0, &unused)
+				p := tr.path(facet, x, 1.76, 1.477, true)
+				got := Ledger{Surface: p.Liquid}
+				// What the stone mirrors goes up through the liquid, or down.
+				up := 2*tr.toEye[facet]*tr.toEye[facet] - 1
+				share := func(power, up, back float64) {
+					if up <= 0 {
+						got.Leaked += power
+						return
+					}
+					got.Leaked += back
+					if power -= back; Fresnel(1.477, 1, up).CosT > tr.headCos {
+						got.Head += power
+					} else {
+						got.Returned += power
+					}
+				}
+				for _, b := range p.Bounces {
+					share(b.Left, fromMgl(b.Leaving).dot(tr.outline.eye), b.Back)
+				}
+				if up > 0 {
+					continue // its polarisation is not told
+				}
+				share(p.Surface, up, 0)
+				const rest = 3e-4 // a path ends at 1e-4, sent three ways
+				near(t, name+": surface", got.Surface, want.Surface, 1e-12, source)
+				near(t, name+": leaked", got.Leaked, want.Leaked, rest, source)
+				near(t, name+": returned", got.Returned, want.Returned, rest, source)
+				near(t, name+": head", got.Head, want.Head, rest, source)
+			}
+		}
+	}
+}
+
 // TestBodyColour is the plate again, with absorption.
 func TestBodyColour(t *testing.T) {
 	s := solid(t, box(200, 200, 0.5)) // 1 mm thick

@@ -156,7 +156,8 @@ func (r *Ray) Lines() (lines []RayLine, more int) {
 		}
 		if !b.Total {
 			line.Left = fmt.Sprintf("%.3f", b.Left)
-			line.Goes = map[trace.Quantity]string{trace.Returned: "up", trace.Head: "head", trace.Leaked: "down"}[b.Goes]
+			line.Goes = map[trace.Quantity]string{trace.Returned: "up", trace.Head: "head", trace.Leaked: "down",
+				trace.Unresolved: "back"}[b.Goes]
 			line.Entry = b.Goes
 		}
 		lines = append(lines, line)
@@ -199,6 +200,12 @@ func (r *Ray) text() string {
 		goes, from := "total reflection", ""
 		if !s.Total {
 			goes, from = s.Goes.String(), fmt.Sprintf("%.3f", s.FromEye.Degrees())
+			switch {
+			case s.Goes == trace.Unresolved:
+				goes, from = "sent back by the liquid's surface", ""
+			case s.Back > 0:
+				goes += fmt.Sprintf(", %.6f of it sent back by the liquid's surface", s.Back)
+			}
 		}
 		fmt.Fprintf(&b, "%d\t%s\t%.3f\t%.6f\t%.6f\t%s\t%s\n",
 			i+1, facetName(r.Stone, s.Facet), s.Incidence.Degrees(), s.Stayed, s.Left, goes, from)
