@@ -313,6 +313,20 @@ func TestRayTellsThePath(t *testing.T) {
 	if p.Look.Ray.Step != len(r.Path.Bounces)-1 {
 		t.Errorf("picked bounce %d", p.Look.Ray.Step)
 	}
+	// In a dish the liquid's surface takes its part first.
+	p.Look.Frame.Around[1].Dish = true
+	p.Look.Follow(1, 0.4, 0.3)
+	d := p.Look.Ray.Path
+	sum = d.Liquid + d.Surface + d.Remaining
+	for _, b := range d.Bounces {
+		sum += b.Left
+	}
+	if !d.Dish || d.Liquid <= 0 || math.Abs(sum-1) > perRay {
+		t.Errorf("in a dish the shares sum to %v, of which the liquid mirrors %v", sum, d.Liquid)
+	}
+	if text := p.Look.Ray.Text(); !strings.Contains(text, "in a dish of water") || !strings.Contains(text, "liquid's surface") {
+		t.Errorf("a ray in a dish is told as %s", text)
+	}
 	p.Look.Follow(0, 0.01, 0.01)
 	if p.Look.Ray.Path != nil || !strings.Contains(p.Look.Ray.Title(), "beside") {
 		t.Errorf("a ray beside the stone: %q", p.Look.Ray.Title())

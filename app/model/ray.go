@@ -109,6 +109,9 @@ func (l *Look) followed(r Ray) Ray {
 // Title says what is followed, in which surrounding, against which critical angle.
 func (r *Ray) Title() string {
 	title := "Ray in " + strings.ToLower(shortName(r.Around.Medium))
+	if r.Around.Dish {
+		title = "Ray in a dish of " + strings.ToLower(shortName(r.Around.Medium))
+	}
 	switch {
 	case r.Path == nil:
 		return title + ": " + r.Why
@@ -141,7 +144,7 @@ func (r *Ray) Lines() (lines []RayLine, more int) {
 	lines = append(lines, RayLine{
 		Facet:  facetName(r.Stone, p.Facet),
 		Angle:  fmt.Sprintf("%.1f°", p.Incidence.Degrees()),
-		Stayed: fmt.Sprintf("%.3f", 1-p.Surface),
+		Stayed: fmt.Sprintf("%.3f", 1-p.Liquid-p.Surface),
 		Left:   fmt.Sprintf("%.3f", p.Surface),
 		Goes:   "mirror",
 		Entry:  trace.Surface,
@@ -194,8 +197,11 @@ func (r *Ray) text() string {
 	}
 	p := r.Path
 	fmt.Fprintf(&b, "wavelength %v, index %.4f in %.4f\n", p.Wavelength, p.IndexStone, p.IndexMedium)
+	if p.Dish {
+		fmt.Fprintf(&b, "mirrored by the liquid's surface: %.6f\n", p.Liquid)
+	}
 	fmt.Fprintln(&b, "bounce\tfacet\tincidence in degrees\tstayed\tleft\tgoes\tdegrees from the eye")
-	fmt.Fprintf(&b, "entry\t%s\t%.3f\t%.6f\t%.6f\tmirrored\t\n", facetName(r.Stone, p.Facet), p.Incidence.Degrees(), 1-p.Surface, p.Surface)
+	fmt.Fprintf(&b, "entry\t%s\t%.3f\t%.6f\t%.6f\tmirrored\t\n", facetName(r.Stone, p.Facet), p.Incidence.Degrees(), 1-p.Liquid-p.Surface, p.Surface)
 	for i, s := range p.Bounces {
 		goes, from := "total reflection", ""
 		if !s.Total {
