@@ -2,6 +2,7 @@ package facets
 
 import (
 	"math"
+	"path/filepath"
 	"slices"
 	"strconv"
 	"strings"
@@ -10,6 +11,20 @@ import (
 // PlanVersion is the version of the plan file that this program reads and
 // writes.
 const PlanVersion = 1
+
+// PlanEnding is how the name of a new plan's file ends. Any name is read; by this one
+// a desktop knows plans from other TOML files.
+const PlanEnding = ".plan.toml"
+
+// FileStem returns the name of a plan's or scan's file without folder and ending:
+// "oval" for "stones/oval.plan.toml", "" for no path.
+func FileStem(path string) string {
+	name := filepath.Base(path)
+	if end := len(name) - len(PlanEnding); end > 0 && strings.EqualFold(name[end:], PlanEnding) {
+		return name[:end]
+	}
+	return strings.TrimSuffix(name, filepath.Ext(name))
+}
 
 // Limits of a plan file: beyond them it is refused unread.
 const (

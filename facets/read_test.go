@@ -487,3 +487,18 @@ func TestDegreesReadBack(t *testing.T) {
 		t.Errorf("41.5 degrees are written as %s", got)
 	}
 }
+
+func TestFileStem(t *testing.T) {
+	for path, want := range map[string]string{
+		"stones/oval.plan.toml": "oval",
+		"oval.Plan.TOML":        "oval",
+		"oval.toml":             "oval",
+		"oval.7.stl":            "oval.7",
+		".plan.toml":            ".plan",
+		"":                      "",
+	} {
+		if got := FileStem(path); got != want {
+			t.Errorf("%q: got %q, want %q", path, got, want)
+		}
+	}
+}

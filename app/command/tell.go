@@ -326,14 +326,14 @@ func (r *teller) stone(c call, flags subjectFlags) (*report.Stone, error) {
 
 // baseName returns the beginning of a stone's file names, none of the taken ones.
 func baseName(flags subjectFlags, taken []string) string {
-	base := strings.TrimSuffix(filepath.Base(testdata.Bundled), filepath.Ext(testdata.Bundled))
+	base := facets.FileStem(testdata.Bundled)
 	switch {
 	case flags.Round != "":
 		base = "round"
 	case flags.Outline != "":
 		base = flags.Outline
 	case flags.Plan != "":
-		base = strings.TrimSuffix(filepath.Base(flags.Plan), filepath.Ext(flags.Plan))
+		base = facets.FileStem(flags.Plan)
 	}
 	name := base
 	for n := 2; slices.Contains(taken, name); n++ {

@@ -250,11 +250,11 @@ func TestSaveAndReopenGiveTheSamePlan(t *testing.T) {
 
 func TestDocumentNames(t *testing.T) {
 	for _, c := range []struct{ name, path, title, file string }{
-		{"Harbour Eight", "", "Harbour Eight", "harbour-eight.toml"},
+		{"Harbour Eight", "", "Harbour Eight", "harbour-eight.plan.toml"},
 		{"Harbour Eight", "/a/b.toml", "Harbour Eight", "b.toml"},
 		{"", "/a/b.toml", "b.toml", "b.toml"},
-		{"", "", "unnamed plan", "plan.toml"},
-		{"  Émeraude / 7? ", "", "  Émeraude / 7? ", "meraude-7.toml"},
+		{"", "", "unnamed plan", "stone.plan.toml"},
+		{"  Émeraude / 7? ", "", "  Émeraude / 7? ", "meraude-7.plan.toml"},
 	} {
 		d := NewDocument(&facets.Plan{Name: c.name}, c.path)
 		if d.Title() != c.title || d.FileName() != c.file {

@@ -95,9 +95,9 @@ func (d *Document) FileName() string {
 		name = name[:len(name)-1]
 	}
 	if len(name) == 0 {
-		return "plan.toml"
+		return "stone" + facets.PlanEnding
 	}
-	return string(name) + ".toml"
+	return string(name) + facets.PlanEnding
 }
 
 // save writes the plan to path as a whole or not at all and goes on under that name.

@@ -381,8 +381,7 @@ func (t *Tell) FileName(ending string) string {
 	if t.subject.plan == nil {
 		return "report" + ending
 	}
-	name := filepath.Base(t.subject.plan.File)
-	name = strings.TrimSuffix(name, filepath.Ext(name))
+	name := facets.FileStem(t.subject.plan.File)
 	if name == "" || name == "." {
 		name = "stone"
 	}

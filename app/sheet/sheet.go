@@ -99,8 +99,7 @@ func (s *Sheet) Carats(mm3 float64) (float64, bool) {
 // FileName returns a name for the sheet's file, without folder and ending, made
 // from the plan file's name.
 func (s *Sheet) FileName() string {
-	base := filepath.Base(s.Plan.File)
-	base = strings.TrimSuffix(base, filepath.Ext(base))
+	base := facets.FileStem(s.Plan.File)
 	if base == "" || base == "." || base == string(filepath.Separator) {
 		base = "plan"
 	}
@@ -138,8 +137,9 @@ func document(sheets []*Sheet, pages []*drawing.Page, title string) (*drawing.Do
 		if !strings.HasSuffix(strings.ToLower(name), ".toml") {
 			name = "plan.toml"
 		}
-		for n := 2; used[name]; n++ {
-			name = fmt.Sprintf("%s-%d.toml", strings.TrimSuffix(filepath.Base(s.Plan.File), ".toml"), n)
+		stem := facets.FileStem(name)
+		for n, ending := 2, name[len(stem):]; used[name]; n++ {
+			name = fmt.Sprintf("%s-%d%s", stem, n, ending)
 		}
 		used[name] = true
 		d.Attachments = append(d.Attachments, drawing.Attachment{

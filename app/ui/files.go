@@ -13,6 +13,7 @@ import (
 	"fyne.io/fyne/v2/widget"
 
 	"pavilight/app/model"
+	"pavilight/facets"
 	"pavilight/testdata"
 )
 
@@ -161,7 +162,7 @@ func (w *window) saveAs() { w.commitTyping(); w.saveAsThen(func() {}) }
 
 // saveAsThen asks for a file and writes the plan to it.
 func (w *window) saveAsThen(then func()) {
-	w.askTarget("Save the plan as", "The plan cannot be saved there", w.bench.Doc.FileName(), []string{".toml"},
+	w.askTarget("Save the plan as", "The plan cannot be saved there", w.bench.Doc.FileName(), []string{facets.PlanEnding, ".toml"},
 		func(path string) { w.write(path, then) })
 }
 
