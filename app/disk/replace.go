@@ -28,7 +28,10 @@ func Replace(path string, write func(io.Writer) error) error {
 func ReplaceKnown(path string, known Stamp, write func(io.Writer) error) (Stamp, error) {
 	sum := newStamper()
 	err := replace(path, func(w io.Writer) error { return write(io.MultiWriter(w, sum)) }, func(target string) error {
-		if now := StampOf(target); now != known && !now.Absent() {
+		switch now := StampOf(target); {
+		case now.Unreachable():
+			return fmt.Errorf("%s cannot be read, so nothing tells whether other hands wrote to it; save under another name", path)
+		case now != known && !now.Absent():
 			return fmt.Errorf("%s: %w", path, ErrChanged)
 		}
 		return nil
@@ -156,14 +159,29 @@ func sweep(folder, pattern string) {
 		return
 	}
 	for _, e := range entries {
-		name := e.Name()
-		middle, ok := strings.CutPrefix(name, before)
-		middle, ok2 := strings.CutSuffix(middle, after)
-		if !ok || !ok2 || !e.Type().IsRegular() || strings.Trim(middle, "0123456789") != "" {
-			continue
+		middle, isNew := strings.CutSuffix(e.Name(), after)
+		middle, ours := strings.CutPrefix(middle, before)
+		if before == anyFile { // the digits follow the last dot
+			middle = middle[strings.LastIndex(middle, ".")+1:]
 		}
-		sweepOne(filepath.Join(folder, name))
+		if isNew && ours && e.Type().IsRegular() && middle != "" && strings.Trim(middle, "0123456789") == "" {
+			sweepOne(filepath.Join(folder, e.Name()))
+		}
 	}
+}
+
+// anyFile begins the names of all new files.
+const anyFile = "."
+
+// Sweep removes all that killed programs left in the folder while they wrote.
+func Sweep(folder string) { sweep(folder, anyFile+"*.new") }
+
+// SweepBeside removes what killed programs left while they wrote the file at path.
+func SweepBeside(path string) {
+	if resolved, err := filepath.EvalSymlinks(path); err == nil {
+		path = resolved
+	}
+	sweep(filepath.Dir(path), newName(filepath.Base(path)))
 }
 
 // sweepOne removes one new file if nobody holds it.

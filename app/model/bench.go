@@ -4,12 +4,14 @@ import (
 	"bytes"
 	"errors"
 	"fmt"
+	"io"
 	"math"
 	"os"
 	"path/filepath"
 	"slices"
 	"strings"
 
+	"pavilight/app/disk"
 	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
@@ -28,6 +30,7 @@ type Bench struct {
 	do       func(func())
 	onChange func()
 	tiers    tierList
+	saves    []*saving // the first is under way
 }
 
 // NewBench returns a bench with the plan on it, its maps not yet asked for: see
@@ -108,13 +111,15 @@ func (b *Bench) read(path string, before *facets.Plan) (*Document, error) {
 		if err != nil {
 			return nil, err
 		}
-		doc = recovered(plan, "")
+		doc = newDocument(plan, "", disk.Stamp{}, false)
 	} else {
+		disk.SweepBeside(path)
+		known := disk.StampOf(path) // before it is read: a change in between is told, not overlooked
 		plan, err := facets.OpenPlan(path)
 		if err != nil {
 			return nil, err
 		}
-		doc = NewDocument(plan, path)
+		doc = newDocument(plan, path, known, true)
 	}
 	_, err := b.subject(doc.Plan())
 	return doc, err
@@ -159,11 +164,81 @@ func (b *Bench) put(doc *Document) {
 	b.show()
 }
 
-// Save writes the plan to path, as a whole or not at all.
-func (b *Bench) Save(path string) error {
-	err := b.Doc.save(path)
+// Save writes the present plan to path on another goroutine, as a whole or not at all,
+// and tells done. A file that other hands have written to since it was read is left as it
+// is, with an error that is disk.ErrChanged, but where over says that the user knows: then,
+// and under a new name, whatever is there is replaced. Saves follow each other in the order
+// in which they are asked for. A recovery, which may be nil, keeps the plan until it is
+// safely in its file, and forgets it then.
+func (b *Bench) Save(path string, over bool, recovery *Recovery, done func(error)) {
+	doc := b.Doc
+	doc.Settle()
+	s := &saving{doc: doc, plan: doc.Plan(), path: path, over: over, recovery: recovery, done: done}
+	b.saves = append(b.saves, s)
+	if len(b.saves) == 1 {
+		b.write(s)
+	}
+}
+
+// KeepMine keeps the plan as it is here although other hands wrote to its file, of which
+// the user was told: it counts as modified, and saving it replaces what they wrote.
+func (b *Bench) KeepMine() {
+	b.Doc.KeepMine()
 	b.onChange()
-	return err
+}
+
+// Saving reports whether a plan is being written just now.
+func (b *Bench) Saving() bool { return len(b.saves) > 0 }
+
+// saving is one wish to write a plan.
+type saving struct {
+	doc      *Document
+	plan     *facets.Plan
+	path     string
+	over     bool
+	recovery *Recovery
+	done     func(error)
+}
+
+// write carries out the first of the saves that wait, and then the next.
+func (b *Bench) write(s *saving) {
+	work := Work{Plan: s.plan, Path: s.doc.Path, Known: s.doc.known}
+	checked := !s.over && s.path == s.doc.Path
+	turn := s.recovery.Turn()
+	keep := s.doc.onDisk != s.plan
+	go func() {
+		if keep {
+			s.recovery.Keep(turn, work) // if that fails there is still the save itself
+		}
+		now, err := writePlan(s.plan, s.path, checked, work.Known)
+		if err == nil {
+			s.recovery.Drop(turn)
+		}
+		b.do(func() {
+			if err == nil {
+				s.doc.saved(s.plan, s.path, now)
+			}
+			b.saves = b.saves[1:]
+			b.onChange()
+			s.done(err)
+			if len(b.saves) > 0 {
+				b.write(b.saves[0])
+			}
+		})
+	}()
+}
+
+// writePlan writes the plan and returns what the file holds then.
+func writePlan(plan *facets.Plan, path string, checked bool, known disk.Stamp) (disk.Stamp, error) {
+	if checked {
+		return disk.ReplaceKnown(path, known, plan.Write)
+	}
+	var text bytes.Buffer
+	if err := plan.Write(&text); err != nil {
+		return disk.Stamp{}, err
+	}
+	err := disk.Replace(path, func(w io.Writer) error { _, err := w.Write(text.Bytes()); return err })
+	return disk.StampOfText(text.String()), err
 }
 
 // Tiers returns the rows of the list, in cutting order.

@@ -13,6 +13,7 @@ import (
 
 	"github.com/go-gl/mathgl/mgl64"
 
+	"pavilight/app/disk"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/testdata"
@@ -48,6 +49,20 @@ func newPlace(t *testing.T) *place {
 	}
 	p.Look.trace = p.engine.trace
 	return p
+}
+
+// save saves the plan and waits for it.
+func (p *place) save(t *testing.T, path string) {
+	t.Helper()
+	if err := p.trySave(path, false); err != nil {
+		t.Fatal(err)
+	}
+}
+
+func (p *place) trySave(path string, over bool) (told error) {
+	p.Save(path, over, nil, func(err error) { told = err })
+	p.window.settle()
+	return told
 }
 
 func (p *place) tier(t *testing.T, name string) TierRow {
@@ -226,9 +241,7 @@ func TestSaveAndReopenGiveTheSamePlan(t *testing.T) {
 		if err := p.SetAngle(0, 41.75*facets.Degree, false); err != nil {
 			t.Fatal(err)
 		}
-		if err := p.Save(path); err != nil {
-			t.Fatal(err)
-		}
+		p.save(t, path)
 		if p.Doc.Modified() || p.Doc.Path != path {
 			t.Errorf("after saving: modified %v, path %q", p.Doc.Modified(), p.Doc.Path)
 		}
@@ -376,22 +389,112 @@ func TestChangesByOtherHandsAreToldOnce(t *testing.T) {
 		t.Fatal(err)
 	}
 	d := NewDocument(&facets.Plan{Name: "x"}, path)
-	if got := d.Seen(StampOf(path)); got != Untouched {
+	if got := d.Seen(disk.StampOf(path)); got != Untouched {
 		t.Errorf("an untouched file is told as %v", got)
 	}
 	if err := os.WriteFile(path, []byte("another"), 0o600); err != nil {
 		t.Fatal(err)
 	}
-	if got := d.Seen(StampOf(path)); got != Changed {
+	if got := d.Seen(disk.StampOf(path)); got != Changed {
 		t.Errorf("a changed file is told as %v", got)
 	}
-	if got := d.Seen(StampOf(path)); got != Untouched {
+	if got := d.Seen(disk.StampOf(path)); got != Untouched {
 		t.Errorf("a change is told twice: %v", got)
 	}
+	if err := os.WriteFile(path, []byte("one"), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	if got := d.Seen(disk.StampOf(path)); got != Untouched {
+		t.Errorf("a file that is as it was is told as %v", got)
+	}
 	os.Remove(path)
-	if got := d.Seen(StampOf(path)); got != Gone || !d.Modified() {
+	if got := d.Seen(disk.StampOf(path)); got != Gone || !d.Modified() {
 		t.Errorf("a file that is gone is told as %v, modified %v", got, d.Modified())
 	}
+	if err := os.WriteFile(path, []byte("one"), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	if got := d.Seen(disk.StampOf(path)); got != Back || d.Modified() {
+		t.Errorf("a file that is back is told as %v, modified %v", got, d.Modified())
+	}
+	// The same length at the same time, as after a clock that was set back.
+	before, err := os.Stat(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := errors.Join(os.WriteFile(path, []byte("two"), 0o600), os.Chtimes(path, before.ModTime(), before.ModTime())); err != nil {
+		t.Fatal(err)
+	}
+	if got := d.Seen(disk.StampOf(path)); got != Changed {
+		t.Errorf("a change that no clock shows is told as %v", got)
+	}
+	if d.KeepMine(); !d.Modified() {
+		t.Error("a plan that is kept although its file differs does not count as modified")
+	}
+}
+
+// What other hands wrote is not written over without the user's word.
+func TestSavingLeavesWhatOthersWrote(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		p := newPlace(t)
+		path := filepath.Join(t.TempDir(), "x.toml")
+		p.save(t, path)
+		const theirs = "# theirs\n"
+		if err := os.WriteFile(path, []byte(theirs), 0o600); err != nil {
+			t.Fatal(err)
+		}
+		if err := p.SetWidth(9); err != nil {
+			t.Fatal(err)
+		}
+		if err := p.trySave(path, false); !errors.Is(err, disk.ErrChanged) || !p.Doc.Modified() {
+			t.Errorf("error %v, modified %v", err, p.Doc.Modified())
+		}
+		if got, _ := os.ReadFile(path); string(got) != theirs {
+			t.Errorf("the file holds %q", got)
+		}
+		if err := p.trySave(path, true); err != nil || p.Doc.Modified() {
+			t.Errorf("with the user's word: %v, modified %v", err, p.Doc.Modified())
+		}
+		p.save(t, path) // and from then on as usual
+		p.Look.Close()
+		p.window.settle()
+	})
+}
+
+// Saves follow each other; what is edited meanwhile stays unsaved.
+func TestEditsDuringASaveStayUnsaved(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		p := newPlace(t)
+		path := filepath.Join(t.TempDir(), "x.toml")
+		var told []error
+		done := func(err error) { told = append(told, err) }
+		drag := func(deg facets.Angle) {
+			if err := p.SetAngle(0, deg*facets.Degree, true); err != nil {
+				t.Fatal(err)
+			}
+		}
+		drag(41.1)
+		p.Save(path, false, nil, done)
+		drag(41.2)
+		p.Save(path, false, nil, done)
+		drag(41.3)
+		p.window.settle()
+		if err := errors.Join(told...); err != nil || len(told) != 2 || p.Saving() {
+			t.Fatalf("told %v", told)
+		}
+		plan, err := facets.OpenPlan(path)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if got := plan.Tiers[0].Angle; got != 41.2*facets.Degree || !p.Doc.Modified() {
+			t.Errorf("the file has P1 at %v; modified %v", got, p.Doc.Modified())
+		}
+		if p.Undo(); p.Doc.Modified() {
+			t.Error("the step that was saved counts as modified")
+		}
+		p.Look.Close()
+		p.window.settle()
+	})
 }
 
 // A solid that is written as a scan and opened comes back as a plan of the same

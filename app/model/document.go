@@ -1,9 +1,7 @@
 package model
 
 import (
-	"os"
 	"path/filepath"
-	"time"
 
 	"pavilight/app/disk"
 	"pavilight/app/words"
@@ -16,18 +14,25 @@ type Document struct {
 	Path string // of its file; empty for a plan that has none yet
 
 	history history[*facets.Plan]
-	stamp   Stamp // of the file as it was read or written
+	known   disk.Stamp   // what the file held when it was read or written
+	seen    disk.Stamp   // what it held when it was last looked at
+	onDisk  *facets.Plan // what the file was read as or written from
 }
 
 // NewDocument returns a document of the plan as it was read from path, or of a
 // bundled plan, which has no file, for an empty path.
 func NewDocument(plan *facets.Plan, path string) *Document {
-	return &Document{Path: path, history: newHistory(plan, true), stamp: StampOf(path)}
+	return newDocument(plan, path, disk.StampOf(path), true)
 }
 
-// recovered returns a document of work that was never saved to path.
-func recovered(plan *facets.Plan, path string) *Document {
-	return &Document{Path: path, history: newHistory(plan, false), stamp: StampOf(path)}
+// newDocument returns a document whose file holds what known tells; the plan may be work
+// that was never saved to it.
+func newDocument(plan *facets.Plan, path string, known disk.Stamp, saved bool) *Document {
+	d := &Document{Path: path, history: newHistory(plan, saved), known: known, seen: known}
+	if saved {
+		d.onDisk = plan
+	}
+	return d
 }
 
 // Plan returns the present plan. It must not be changed; see Edit.
@@ -100,32 +105,16 @@ func (d *Document) FileName() string {
 	return string(name) + facets.PlanEnding
 }
 
-// save writes the plan to path as a whole or not at all and goes on under that name.
-func (d *Document) save(path string) error {
-	if err := disk.Replace(path, d.Plan().Write); err != nil {
-		return err
-	}
-	d.Path, d.stamp = path, StampOf(path)
-	d.history.markSaved()
-	return nil
+// saved goes on under the name of the file that the plan, which may no longer be the
+// present one, was written to.
+func (d *Document) saved(plan *facets.Plan, path string, now disk.Stamp) {
+	d.Path, d.known, d.seen, d.onDisk = path, now, now, plan
+	d.markSaved()
 }
 
-// Stamp tells one state of a file from another; the zero value stands for no file.
-type Stamp struct {
-	changed time.Time
-	bytes   int64
-}
-
-// StampOf returns the stamp of the file at path as it is now.
-func StampOf(path string) Stamp {
-	if path == "" {
-		return Stamp{}
-	}
-	info, err := os.Stat(path)
-	if err != nil {
-		return Stamp{}
-	}
-	return Stamp{info.ModTime(), info.Size()}
+// markSaved says that the plan on disk is that of the step that made it.
+func (d *Document) markSaved() {
+	d.history.markSaved(func(p *facets.Plan) bool { return p == d.onDisk })
 }
 
 // Outside says what happened to the document's file by other hands.
@@ -136,22 +125,40 @@ const (
 	Untouched Outside = iota
 	Changed           // the file holds something else now
 	Gone              // the file is not there any more
+	Lost              // the file, or the drive that it lies on, does not answer
+	Back              // the file is there again and holds what it held
 )
 
-// Seen compares the file's stamp as it is now with the one that the document knows,
-// and remembers it, so that each change is told once. A plan whose file is gone
-// counts as modified.
-func (d *Document) Seen(now Stamp) Outside {
-	before := d.stamp
-	d.stamp = now
-	switch {
-	case d.Path == "" || now == before:
+// Seen compares what the file holds now with what was seen last, and remembers it, so
+// that each change is told once. A plan whose file is gone counts as modified.
+func (d *Document) Seen(now disk.Stamp) Outside {
+	last := d.seen
+	if d.Path == "" || now == last {
 		return Untouched
-	case now == Stamp{}:
+	}
+	d.seen = now
+	out := func(s disk.Stamp) bool { return s.Absent() || s.Unreachable() }
+	switch {
+	case out(now):
 		d.history.saved = -1
+		if now.Unreachable() {
+			return Lost
+		}
 		return Gone
+	case now == d.known && out(last):
+		d.markSaved()
+		return Back
+	case now == d.known: // it was changed, and changed back
+		return Untouched
 	}
 	return Changed
+}
+
+// KeepMine takes note that the user was told of what the file holds now and wants to keep
+// the plan as it is here: it counts as modified, and saving it writes over the file.
+func (d *Document) KeepMine() {
+	d.known, d.onDisk = d.seen, nil
+	d.history.saved = -1
 }
 
 // First returns the plan as it was when the document was opened, as far as is remembered.

@@ -1,6 +1,10 @@
 package model
 
-import "pavilight/app/words"
+import (
+	"slices"
+
+	"pavilight/app/words"
+)
 
 // history is what undo and redo walk along: the states of a document, each with
 // the name of the step that led to it. The zero value holds nothing; start with
@@ -90,7 +94,8 @@ func (h *history[T]) redo() bool {
 
 func (h *history[T]) modified() bool { return h.at != h.saved }
 
-func (h *history[T]) markSaved() {
-	h.settle()
-	h.saved = h.at
+// markSaved says that the state for which is reports true is on disk; none if it is not
+// remembered. A state that may be saved later must be settled before another is pushed.
+func (h *history[T]) markSaved(is func(T) bool) {
+	h.saved = slices.IndexFunc(h.steps, func(s step[T]) bool { return is(s.state) })
 }

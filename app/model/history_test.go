@@ -31,7 +31,8 @@ func TestHistoryMergesADragIntoOneStep(t *testing.T) {
 func TestHistoryNeverMergesIntoTheSavedState(t *testing.T) {
 	h := newHistory(1, true)
 	h.push(words.Later("a"), "k", 2)
-	h.markSaved()
+	h.settle()
+	h.markSaved(func(s int) bool { return s == h.present() })
 	h.push(words.Later("a"), "k", 3)
 	if !h.modified() {
 		t.Error("a step after saving is not marked as modified")
@@ -44,7 +45,8 @@ func TestHistoryNeverMergesIntoTheSavedState(t *testing.T) {
 func TestHistoryForgetsTheSavedStateWhenItIsCutOff(t *testing.T) {
 	h := newHistory(1, true)
 	h.push(words.Later("a"), "", 2)
-	h.markSaved()
+	h.settle()
+	h.markSaved(func(s int) bool { return s == h.present() })
 	h.undo()
 	h.push(words.Later("b"), "", 3) // the saved state can no longer be reached
 	for h.undo() {

@@ -3,35 +3,18 @@ package model
 import (
 	"bytes"
 	"encoding/json"
+	"errors"
 	"os"
-	"os/exec"
 	"path/filepath"
-	"strconv"
 	"strings"
 	"testing"
 	"testing/synctest"
+	"time"
 
+	"pavilight/app/disk"
 	"pavilight/facets"
 	"pavilight/testdata/budget"
 )
-
-// gonePID returns the number of a process that has ended.
-func gonePID(t *testing.T) int {
-	t.Helper()
-	c := exec.Command(os.Args[0], "-test.run=^$")
-	if err := c.Run(); err != nil {
-		t.Fatal(err)
-	}
-	return c.Process.Pid
-}
-
-// leave makes the recovery's file look like one of a program that has ended.
-func leave(t *testing.T, r *Recovery) {
-	t.Helper()
-	if err := os.Rename(r.own, filepath.Join(r.folder, "unsaved-"+strconv.Itoa(gonePID(t))+".json")); err != nil {
-		t.Fatal(err)
-	}
-}
 
 func TestUnsavedWorkIsFoundAgain(t *testing.T) {
 	synctest.Test(t, func(t *testing.T) {
@@ -40,16 +23,27 @@ func TestUnsavedWorkIsFoundAgain(t *testing.T) {
 			t.Fatal(err)
 		}
 		r := NewRecovery(filepath.Join(t.TempDir(), "made when needed"))
-		if err := r.Keep(p.Doc.Plan(), "/somewhere/mine.toml"); err != nil {
+		work := p.Doc.Work()
+		work.Path = "/somewhere/mine.toml"
+		if err := r.Keep(r.Turn(), work); err != nil {
 			t.Fatal(err)
 		}
 		if found, err := r.Find(); len(found) != 0 || err != nil {
 			t.Fatalf("a program finds its own work: %v, %v", found, err)
 		}
-		leave(t, r)
+		next := NewRecovery(r.folder)
+		if found, err := next.Find(); len(found) != 0 || err != nil {
+			t.Fatalf("the work of a running program is offered: %v, %v", found, err)
+		}
+		r.Close() // as the program's end does
+		third := NewRecovery(r.folder)
+		r = next
 		found, err := r.Find()
 		if err != nil || len(found) != 1 {
 			t.Fatalf("found %v, %v", found, err)
+		}
+		if found, err := third.Find(); len(found) != 0 || err != nil {
+			t.Fatalf("work is offered in two windows: %v, %v", found, err)
 		}
 		p.Recover(found[0])
 		if got := p.Doc.Plan().Tiers[0].Angle; got != 41.25*facets.Degree {
@@ -62,22 +56,119 @@ func TestUnsavedWorkIsFoundAgain(t *testing.T) {
 		if found, _ := r.Find(); len(found) != 0 {
 			t.Error("discarded work is found again")
 		}
+		if left, _ := os.ReadDir(r.folder); len(left) != 0 {
+			t.Errorf("left in the folder: %v", left)
+		}
 		p.Look.Close()
 		p.window.settle()
 	})
 }
 
-func TestWorkOfARunningProgramIsLeftAlone(t *testing.T) {
-	r := NewRecovery(t.TempDir())
-	other := filepath.Join(r.folder, "unsaved-"+strconv.Itoa(os.Getppid())+".json")
-	if err := os.WriteFile(other, []byte("{}"), 0o600); err != nil {
+// The clock has no say in which work is the newest: it may have been set back between two
+// runs, and files may have been copied.
+func TestTheNewestIsOfferedFirst(t *testing.T) {
+	folder := t.TempDir()
+	plan, err := facets.ReadPlan(strings.NewReader(string(bundledText(t))), "bundled")
+	if err != nil {
 		t.Fatal(err)
 	}
-	if found, err := r.Find(); len(found) != 0 || err != nil {
-		t.Errorf("found %v, %v", found, err)
+	now := time.Now()
+	for i := range 4 {
+		r := NewRecovery(folder)
+		older := plan.Clone()
+		older.WidthMM = 99
+		later := plan.Clone()
+		later.WidthMM = float64(i + 1)
+		first, second := r.Turn(), r.Turn()
+		if err := errors.Join(r.Keep(second, Work{Plan: later}), r.Keep(first, Work{Plan: older})); err != nil { // it comes late, and has no say
+			t.Fatal(err)
+		}
+		r.Drop(first) // nor has this
+		back := now.Add(-time.Duration(i) * time.Hour)
+		if err := os.Chtimes(r.own, back, back); err != nil {
+			t.Fatal(err)
+		}
+		r.Close()
 	}
-	if _, err := os.Stat(other); err != nil {
-		t.Error("another program's work was touched: ", err)
+	found, err := NewRecovery(folder).Find()
+	if err != nil || len(found) != 4 {
+		t.Fatalf("found %v, %v", found, err)
+	}
+	for i, work := range found {
+		if want := float64(4 - i); work.Plan.WidthMM != want {
+			t.Errorf("place %d is work number %v, want %v", i, work.Plan.WidthMM, want)
+		}
+	}
+}
+
+// Work that is in its file after all is not offered; work whose file was written to since
+// is, with word of that, and saving it asks.
+func TestWorkAndItsFile(t *testing.T) {
+	folder := t.TempDir()
+	path := filepath.Join(folder, "mine.toml")
+	text := string(bundledText(t))
+	plan, err := facets.ReadPlan(strings.NewReader(text), "mine.toml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, c := range []struct {
+		name, file     string
+		found, changed bool
+	}{
+		{"saved after all", text, false, false},
+		{"not saved", "before", true, false},
+		{"written by others", "theirs", true, true},
+	} {
+		r := NewRecovery(filepath.Join(folder, "unsaved"))
+		if err := r.Keep(r.Turn(), Work{plan, path, disk.StampOfText("before")}); err != nil {
+			t.Fatal(err)
+		}
+		r.Close()
+		if err := os.WriteFile(path, []byte(c.file), 0o600); err != nil {
+			t.Fatal(err)
+		}
+		next := NewRecovery(filepath.Join(folder, "unsaved"))
+		found, err := next.Find()
+		if err != nil || len(found) != map[bool]int{true: 1}[c.found] {
+			t.Errorf("%s: found %v, %v", c.name, found, err)
+			continue
+		}
+		if c.found {
+			if found[0].Changed != c.changed {
+				t.Errorf("%s: changed %v", c.name, found[0].Changed)
+			}
+			next.Discard(found[0])
+		}
+		next.Close()
+	}
+}
+
+func TestTheSecondWindowIsTold(t *testing.T) {
+	folder := t.TempDir()
+	a, b := NewClaims(folder), NewClaims(folder)
+	for i, step := range []struct {
+		claims *Claims
+		path   string
+		want   bool
+	}{
+		{a, "/x/one.toml", false},
+		{a, "/x/one.toml", false},
+		{b, "/x/one.toml", true},
+		{b, "/x/two.toml", false},
+		{b, "/x/one.toml", true},
+		{a, "/x/three.toml", false},
+		{b, "/x/one.toml", false},
+		{a, "/x/one.toml", true},
+		{b, "", false},
+		{a, "/x/one.toml", false},
+	} {
+		if got := step.claims.Take(step.path); got != step.want {
+			t.Errorf("step %d, %s: open elsewhere is %v", i, step.path, got)
+		}
+	}
+	a.Release()
+	if left, _ := os.ReadDir(folder); len(left) != 0 {
+		t.Errorf("left in the folder: %v", left)
 	}
 }
 
@@ -93,7 +184,7 @@ func TestDamagedWorkIsSetAsideInWords(t *testing.T) {
 		if err := os.WriteFile(r.own, []byte(content), 0o600); err != nil {
 			t.Fatal(err)
 		}
-		leave(t, r)
+		r = NewRecovery(r.folder) // the next run
 		found, err := r.Find()
 		if len(found) != 0 || err == nil || !strings.Contains(err.Error(), "damaged") {
 			t.Errorf("%s: found %v, error %v", name, found, err)
@@ -114,7 +205,7 @@ func FuzzReadKept(f *testing.F) {
 	if err != nil {
 		f.Fatal(err)
 	}
-	whole, err := json.Marshal(kept{"/somewhere/mine.toml", string(round)})
+	whole, err := json.Marshal(kept{7, "/somewhere/mine.toml", disk.StampOfText("before"), string(round)})
 	if err != nil {
 		f.Fatal(err)
 	}
@@ -128,22 +219,24 @@ func FuzzReadKept(f *testing.F) {
 		if err := os.WriteFile(file, data, 0o600); err != nil {
 			t.Fatal(err)
 		}
-		var work Recovered
+		var work *Recovered
 		var err error
-		budget.Hold(t, 2000*len(data), func() { work, err = readKept(file) })
-		if err != nil {
+		budget.Hold(t, 2000*len(data), func() { work, err = readRecovered(file) })
+		if err != nil || work == nil {
 			return
 		}
-		r := &Recovery{folder, filepath.Join(folder, "unsaved-1.json")}
-		if err := r.Keep(work.Plan, work.Path); err != nil {
+		r := NewRecovery(folder)
+		defer os.Remove(r.own)
+		defer r.Close()
+		if err := r.Keep(r.Turn(), work.Work); err != nil {
 			t.Fatal(err)
 		}
-		again, err := readKept(r.own)
-		if err != nil {
+		again, err := readRecovered(r.own)
+		if err != nil || again == nil {
 			t.Fatalf("what was kept is not found again: %v", err)
 		}
 		var a, b bytes.Buffer
-		if work.Plan.Write(&a) != nil || again.Plan.Write(&b) != nil || a.String() != b.String() || again.Path != work.Path {
+		if work.Plan.Write(&a) != nil || again.Plan.Write(&b) != nil || a.String() != b.String() || again.Path != work.Path || again.Known != work.Known || again.sequence == 0 {
 			t.Errorf("%q of %q became %q of %q", a.String(), work.Path, b.String(), again.Path)
 		}
 	})

@@ -1,6 +1,7 @@
 package ui
 
 import (
+	"errors"
 	"io/fs"
 	"os"
 	"path/filepath"
@@ -12,6 +13,7 @@ import (
 	"fyne.io/fyne/v2/storage"
 	"fyne.io/fyne/v2/widget"
 
+	"pavilight/app/disk"
 	"pavilight/app/model"
 	"pavilight/facets"
 	"pavilight/testdata"
@@ -51,6 +53,7 @@ func (w *window) afterOpening() {
 	w.list.scroll.ScrollToTop()
 	w.say(nil)
 	w.refreshMenu()
+	w.look()
 	w.tell("opened")
 }
 
@@ -73,6 +76,11 @@ func (w *window) explain(title string, err error) {
 	d := dialog.NewCustom(title, "Close", container.NewBorder(nil,
 		container.NewGridWrap(fyne.NewSize(400, 24), keeps), nil, nil, scroll), w.win)
 	w.raise(d)
+}
+
+// notice tells something that needs no answer.
+func (w *window) notice(title, text string) {
+	w.raise(dialog.NewCustom(title, "Close", widget.NewLabel(text), w.win))
 }
 
 // openDialog asks which plan to open.
@@ -166,17 +174,47 @@ func (w *window) saveAsThen(then func()) {
 		func(path string) { w.write(path, then) })
 }
 
-func (w *window) write(path string, then func()) {
-	if err := w.bench.Save(path); err != nil {
-		w.explain("The plan was not saved", err)
-		w.tell("refused")
-		return
+func (w *window) write(path string, then func()) { w.writeOver(path, false, then) }
+
+// writeOver writes the plan; over says that the user knows of what other hands wrote.
+func (w *window) writeOver(path string, over bool, then func()) {
+	w.tell("saving")
+	doc := w.bench.Doc
+	w.bench.Save(path, over, w.keeper.recovery, func(err error) {
+		switch {
+		case errors.Is(err, disk.ErrChanged) && doc == w.bench.Doc:
+			w.askOver(path, then)
+		case err != nil:
+			w.explain("The plan was not saved", err)
+			w.tell("refused")
+		default:
+			w.keeper.forgetTaken()
+			w.files.keepRecent(path)
+			w.refreshMenu()
+			w.report("Saved as " + path)
+			w.tell("saved")
+			w.look()
+			then()
+		}
+	})
+}
+
+// askOver asks what to do about a file that other hands wrote to since it was read.
+func (w *window) askOver(path string, then func()) {
+	var d *dialog.CustomDialog
+	choice := func(label string, do func()) *widget.Button {
+		return widget.NewButton(label, func() { d.Hide(); do() })
 	}
-	w.files.keepRecent(path)
-	w.refreshMenu()
-	w.report("Saved as " + path)
-	w.tell("saved")
-	then()
+	text := widget.NewLabel("“" + filepath.Base(path) + "” was written to by another program or window\n" +
+		"since it was read here. Nothing was saved yet.")
+	d = dialog.NewCustomWithoutButtons("The file has changed", text, w.win)
+	d.SetButtons([]fyne.CanvasObject{
+		choice("Cancel", func() {}),
+		choice("Replace it", func() { w.writeOver(path, true, then) }),
+		choice("Save as…", func() { w.saveAsThen(then) }),
+	})
+	w.raise(d)
+	w.tell("refused")
 }
 
 // dropped takes files that were dropped on the window.
@@ -229,9 +267,7 @@ func (w *window) close() {
 		return
 	}
 	w.closed = true
-	if w.keeper.recovery != nil {
-		w.keeper.recovery.Drop()
-	}
+	w.dropKept()
 	w.leave()
 }
 
@@ -249,6 +285,8 @@ func (w *window) leave() {
 	w.files.keepWindowSize(w.win.Canvas().Size())
 	w.endKeeping()
 	w.stopRooms()
+	w.keeper.recovery.Close()
+	w.keeper.claims.Release()
 	w.win.Close()
 }
 

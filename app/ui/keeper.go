@@ -11,18 +11,24 @@ import (
 	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/widget"
 
+	"pavilight/app/disk"
 	"pavilight/app/model"
 	"pavilight/facets"
 )
 
 // keeper keeps unsaved work against a crash and notices when the plan's file is
-// changed by other hands.
+// changed by other hands or opened in another window.
 type keeper struct {
 	recovery *model.Recovery
+	claims   *model.Claims
 	kept     *facets.Plan // the last that was kept
 	keptAt   time.Time
-	busy     atomic.Bool // a file is being written or asked after
-	told     bool        // that keeping fails
+	taken    []model.Recovered // was taken up, and stays on the disk until it is kept anew
+	keeping  atomic.Bool       // unsaved work is being written
+	looking  atomic.Bool       // the file is being asked after
+	told     bool              // that keeping fails
+	asking   bool              // what to do with a file that was changed
+	shared   string            // the file that is open in another window, too, once that is told
 
 	stop chan struct{}
 	done sync.WaitGroup
@@ -37,7 +43,7 @@ const (
 // beginKeeping starts the keeper's clock; endKeeping stops it and waits for it.
 func (w *window) beginKeeping(folder string) {
 	k := &w.keeper
-	k.recovery = model.NewRecovery(folder)
+	k.recovery, k.claims = model.NewRecovery(folder), model.NewClaims(folder)
 	stop := make(chan struct{})
 	k.stop = stop
 	k.done.Go(func() {
@@ -49,11 +55,14 @@ func (w *window) beginKeeping(folder string) {
 				return
 			case <-clock.C:
 				w.do(w.keep)
+				w.do(w.look)
 			}
 		}
 	})
 }
 
+// endKeeping stops the clock and waits for what is being kept. It does not wait for a
+// drive that does not answer.
 func (w *window) endKeeping() {
 	if w.keeper.stop != nil {
 		close(w.keeper.stop)
@@ -62,50 +71,103 @@ func (w *window) endKeeping() {
 	}
 }
 
-// keep looks after the file and the unsaved work, the slow part elsewhere.
+// keep looks after the unsaved work, the slow part elsewhere.
 func (w *window) keep() {
 	k, doc := &w.keeper, w.bench.Doc
-	if k.stop == nil || !k.busy.CompareAndSwap(false, true) {
+	if k.stop == nil || !k.keeping.CompareAndSwap(false, true) {
 		return
 	}
-	plan, path := doc.Plan(), doc.Path
-	save := doc.Modified() && plan != k.kept && time.Since(k.keptAt) >= keepEvery
+	work := doc.Work()
+	save := doc.Modified() && work.Plan != k.kept && time.Since(k.keptAt) >= keepEvery
 	drop := !doc.Modified() && k.kept != nil
-	if save {
-		k.kept, k.keptAt = plan, time.Now()
+	if !save && !drop {
+		k.keeping.Store(false)
+		return
 	}
-	if drop {
+	turn := k.recovery.Turn()
+	if k.kept, k.keptAt = work.Plan, time.Now(); drop {
 		k.kept = nil
 	}
 	k.done.Go(func() {
 		var err error
 		if save {
-			err = k.recovery.Keep(plan, path)
+			err = k.recovery.Keep(turn, work)
+		} else {
+			k.recovery.Drop(turn)
 		}
-		if drop {
-			k.recovery.Drop()
-		}
-		stamp := model.StampOf(path)
-		k.busy.Store(false)
-		w.do(func() { w.looked(doc, path, stamp, err) })
+		k.keeping.Store(false)
+		w.do(func() { w.keptWork(err) })
 	})
 }
 
-// looked takes what the keeper found.
-func (w *window) looked(doc *model.Document, path string, stamp model.Stamp, err error) {
-	if err != nil && !w.keeper.told {
-		w.keeper.told = true
+// keptWork takes note of how it went.
+func (w *window) keptWork(err error) {
+	k := &w.keeper
+	if err == nil {
+		k.told = false
+		k.forgetTaken()
+		return
+	}
+	k.kept = nil // tried again
+	if !k.told {
+		k.told = true
 		w.say(fmt.Errorf("unsaved work cannot be kept against a crash: %w", err))
 	}
-	if doc != w.bench.Doc || path != doc.Path || w.keeper.stop == nil {
+}
+
+// forgetTaken forgets the files of work that was taken up: it lies elsewhere by now, or is
+// not wanted.
+func (k *keeper) forgetTaken() {
+	for _, work := range k.taken {
+		k.recovery.Discard(work)
+	}
+	k.taken = nil
+}
+
+// look looks at the plan's file, on another goroutine: its drive may be slow to answer, or
+// gone.
+func (w *window) look() {
+	k, doc := &w.keeper, w.bench.Doc
+	if k.stop == nil || k.asking || w.bench.Saving() || !k.looking.CompareAndSwap(false, true) {
 		return
+	}
+	work, claims := doc.Work(), k.claims
+	go func() {
+		elsewhere := claims.Take(work.Path)
+		stamp := disk.StampOf(work.Path)
+		k.looking.Store(false)
+		w.do(func() {
+			// Not if another document or a save came between.
+			if doc == w.bench.Doc && k.stop != nil && !w.bench.Saving() && work.Path == doc.Path && work.Known == doc.Work().Known {
+				w.looked(stamp, elsewhere)
+			}
+		})
+	}()
+}
+
+// looked takes what was seen of the plan's file.
+func (w *window) looked(stamp disk.Stamp, elsewhere bool) {
+	doc := w.bench.Doc
+	name := filepath.Base(doc.Path)
+	if elsewhere && w.keeper.shared != doc.Path {
+		w.keeper.shared = doc.Path
+		w.notice("Open in two windows", "“"+name+"” is open in another window of Pavilight, too.\n"+
+			"What is saved there is told here. Neither window writes\nover what the other has saved without asking.")
+		w.tell("shared")
 	}
 	switch doc.Seen(stamp) {
 	case model.Gone:
 		w.onPlan()
-		w.say(fmt.Errorf("%s is gone from its folder; save the plan to write it again", filepath.Base(path)))
+		w.say(fmt.Errorf("%s is gone from its folder; save the plan to write it again", name))
+	case model.Lost:
+		w.onPlan()
+		w.say(fmt.Errorf("%s does not answer; if its drive was taken out, plug it in again, or save the plan elsewhere", name))
+	case model.Back:
+		w.onPlan()
+		w.say(nil)
+		w.report(name + " is back in its folder.")
 	case model.Changed:
-		w.askReload(path)
+		w.askReload(doc.Path)
 	}
 }
 
@@ -115,26 +177,45 @@ func (w *window) askReload(path string) {
 	if w.bench.Doc.Modified() {
 		text += " Your own changes would be lost."
 	}
+	w.keeper.asking = true
 	d := dialog.NewConfirm("The file has changed", text, func(again bool) {
+		w.keeper.asking = false
 		if again {
 			w.open(path)
+			return
 		}
+		w.bench.KeepMine()
 	}, w.win)
 	d.SetConfirmText("Read again")
 	d.SetDismissText("Keep mine")
 	w.raise(d)
+	w.tell("changed")
 }
 
 // keepNow keeps unsaved work before the program ends without asking.
 func (w *window) keepNow() {
-	if w.keeper.recovery == nil {
+	k := &w.keeper
+	if k.recovery == nil {
 		return
 	}
+	turn := k.recovery.Turn()
 	if w.bench.Doc.Modified() {
-		w.keeper.recovery.Keep(w.bench.Doc.Plan(), w.bench.Doc.Path) // nobody is left to be told
+		if k.recovery.Keep(turn, w.bench.Doc.Work()) == nil { // else nobody is left to be told
+			k.forgetTaken()
+		}
 	} else {
-		w.keeper.recovery.Drop()
+		k.recovery.Drop(turn)
 	}
+}
+
+// dropKept forgets what was kept: it is not wanted.
+func (w *window) dropKept() {
+	k := &w.keeper
+	if k.recovery == nil {
+		return
+	}
+	k.recovery.Drop(k.recovery.Turn())
+	k.forgetTaken()
 }
 
 // offerRecovered offers the unsaved work that an earlier run left behind.
@@ -154,8 +235,12 @@ func (w *window) offer(found []model.Recovered) {
 	if work.Path != "" {
 		name += " (" + filepath.Base(work.Path) + ")"
 	}
-	text := widget.NewLabel(fmt.Sprintf("An earlier run ended before “%s” was saved.\nIts changes up to %s were kept.",
-		name, work.Saved.Format("2 January 15:04")))
+	words := fmt.Sprintf("An earlier run ended before “%s” was saved.\nIts changes up to %s were kept.",
+		name, work.Saved.Format("2 January 15:04"))
+	if work.Changed {
+		words += "\nIts file was written to since; it is left alone until you save."
+	}
+	text := widget.NewLabel(words)
 	var d *dialog.CustomDialog
 	next := func(do func()) func() {
 		return func() {
@@ -168,11 +253,7 @@ func (w *window) offer(found []model.Recovered) {
 	}
 	take := widget.NewButton("Take them up", func() {
 		d.Hide()
-		w.bench.Recover(work)
-		w.keeper.kept, w.keeper.keptAt = nil, time.Time{} // kept anew, under this program's name
-		w.keep()
-		w.keeper.recovery.Discard(work)
-		w.afterOpening()
+		w.take(work)
 	})
 	take.Importance = widget.HighImportance
 	d = dialog.NewCustomWithoutButtons("Unsaved work", text, w.win)
@@ -183,4 +264,13 @@ func (w *window) offer(found []model.Recovered) {
 	})
 	w.raise(d)
 	w.tell("offered")
+}
+
+// take takes unsaved work up.
+func (w *window) take(work model.Recovered) {
+	w.bench.Recover(work)
+	w.keeper.taken = append(w.keeper.taken, work)
+	w.keeper.kept, w.keeper.keptAt = nil, time.Time{} // kept anew, under this program's name
+	w.keep()
+	w.afterOpening()
 }

@@ -90,6 +90,8 @@ func Run(ctx context.Context, o Options) error {
 	}
 	w.endKeeping()
 	w.stopRooms()
+	w.keeper.recovery.Close()
+	w.keeper.claims.Release()
 	return nil
 }
 

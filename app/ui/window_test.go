@@ -5,6 +5,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"sync"
 	"testing"
@@ -282,7 +283,9 @@ func TestOpenEditSaveUndo(t *testing.T) {
 	r.open(path)
 	r.until(t, "the plan", func() bool { return r.bench.Doc.Path == path })
 	typeInto(r, r.row(t, "C3").field, "22°30'")
+	r.told = nil
 	r.menu.save.Action()
+	r.until(t, "the save", func() bool { return slices.Contains(r.told, "saved") })
 	saved, err := os.ReadFile(path)
 	if err != nil {
 		t.Fatal(err)
@@ -477,9 +480,8 @@ func TestPreferencesThatWereDamagedAreNotBelieved(t *testing.T) {
 func TestFileChangedByOtherHands(t *testing.T) {
 	r := newRig(t, testdata.Bundled)
 	path := filepath.Join(t.TempDir(), "mine.toml")
-	if err := r.bench.Save(path); err != nil {
-		t.Fatal(err)
-	}
+	r.write(path, func() {})
+	r.until(t, "the save", func() bool { return slices.Contains(r.told, "saved") })
 	r.beginKeeping(t.TempDir())
 	defer r.endKeeping()
 	text, err := os.ReadFile(path)
@@ -489,12 +491,11 @@ func TestFileChangedByOtherHands(t *testing.T) {
 	if err := os.WriteFile(path, append(text, "# a remark\n"...), 0o600); err != nil {
 		t.Fatal(err)
 	}
-	r.keep()
-	r.until(t, "the question", func() bool { return r.win.Canvas().Overlays().Top() != nil })
-	r.win.Canvas().Overlays().Remove(r.win.Canvas().Overlays().Top())
+	r.look()
+	r.until(t, "the question", func() bool { return len(r.dialogs) > 0 })
+	r.escape() // keeps what is in the window
 	os.Remove(path)
-	r.keeper.busy.Store(false)
-	r.keep()
+	r.look()
 	r.until(t, "word of the loss", func() bool { return strings.Contains(r.message.text, "gone") })
 	if !strings.Contains(r.win.Title(), "*") {
 		t.Error("a plan whose file is gone does not count as unsaved")
@@ -508,14 +509,7 @@ func TestUnsavedWorkIsOfferedAtTheNextStart(t *testing.T) {
 	typeInto(r, r.row(t, "P1").field, "41,25")
 	r.keepNow() // as when a signal ends the program
 	r.endKeeping()
-	// The file bears this test's number; give it one that no program has.
-	files, err := filepath.Glob(filepath.Join(folder, "unsaved-*.json"))
-	if err != nil || len(files) != 1 {
-		t.Fatalf("kept files: %v, %v", files, err)
-	}
-	if err := os.Rename(files[0], filepath.Join(folder, "unsaved-0.json")); err != nil {
-		t.Fatal(err)
-	}
+	r.keeper.recovery.Close() // as the program's end does
 	again := newRig(t, testdata.Bundled)
 	again.beginKeeping(folder)
 	defer again.endKeeping()
