@@ -77,20 +77,7 @@ func run(ctx context.Context, args []string, env Environment, out io.Writer) err
 		return context.Cause(ctx) // a window that a signal closed was stopped
 	}
 	var l line
-	parser, err := kong.New(&l,
-		kong.Name("pavilight"),
-		kong.Description(description),
-		kong.Writers(out, env.Stderr),
-		kong.NoDefaultHelp(),
-		kong.Vars{
-			"lights": strings.Join(trace.LightNames(), ", "), "illuminants": strings.Join(trace.IlluminantNames(), ", "),
-			"outlines": strings.Join(facets.Outlines(), ", "),
-		},
-		kong.Bind(answer{out}),
-		kong.ConfigureHelp(kong.HelpOptions{Compact: true, WrapUpperBound: 100}),
-		kong.NamedMapper("number", kong.MapperFunc(decodeNumber)),
-		kong.NamedMapper("word", kong.MapperFunc(decodeWord)),
-	)
+	parser, err := newParser(&l, out, env.Stderr)
 	if err != nil {
 		return err
 	}
@@ -113,6 +100,34 @@ func run(ctx context.Context, args []string, env Environment, out io.Writer) err
 		return s.run()
 	}
 	return k.Run(c)
+}
+
+// newParser returns what reads a command line into l and prints help and answers to out.
+func newParser(l *line, out, warnings io.Writer) (*kong.Kong, error) {
+	return kong.New(l,
+		kong.Name("pavilight"),
+		kong.Description(description),
+		kong.Writers(out, warnings),
+		kong.NoDefaultHelp(),
+		kong.Vars{
+			"lights": strings.Join(trace.LightNames(), ", "), "illuminants": strings.Join(trace.IlluminantNames(), ", "),
+			"outlines": strings.Join(facets.Outlines(), ", "),
+		},
+		kong.Bind(answer{out}),
+		kong.ConfigureHelp(kong.HelpOptions{Compact: true, WrapUpperBound: 100}),
+		kong.NamedMapper("number", kong.MapperFunc(decodeNumber)),
+		kong.NamedMapper("word", kong.MapperFunc(decodeWord)),
+	)
+}
+
+// Grammar returns all that the command line takes, for pages and programs that tell of
+// it.
+func Grammar() (*kong.Application, error) {
+	parser, err := newParser(new(line), io.Discard, io.Discard)
+	if err != nil {
+		return nil, err
+	}
+	return parser.Model, nil
 }
 
 // windowAsked reports whether the arguments ask for the window, and on which file:
