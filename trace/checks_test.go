@@ -140,6 +140,7 @@ var themes = []struct{ file, title string }{
 	{"path_length_test.go", "Way of the light inside, pixel by pixel"},
 	{"doors_test.go", "By which facets light leaves"},
 	{"crystal_test.go", "Double refraction at a facet"},
+	{"crystal_biaxial_test.go", "Double refraction in biaxial crystals"},
 	{"travel_crystal_test.go", "Double refraction in a stone"},
 	{"reciprocity_test.go", "Light traced forward"},
 	{"peer_test.go", "A general path tracer"},

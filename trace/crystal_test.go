@@ -7,6 +7,8 @@ import (
 	"testing"
 
 	"gonum.org/v1/gonum/mat"
+
+	"pavilight/gems"
 )
 
 // Calcite at the sodium line.
@@ -23,12 +25,11 @@ func unit(rng *rand.Rand) vec {
 
 // walkOff is the angle in degrees between the wave vector and the ray of the
 // extraordinary wave whose wave vector lies at an angle, in degrees, from the axis.
-func walkOff(c crystal, degree float64) (walk, index float64) {
+func walkOff(o, e, degree float64) (walk, index float64) {
 	// A facet across the wave vector.
 	sin, cos := math.Sincos(degree * math.Pi / 180)
-	c.axis = vec{sin, 0, cos}
 	f := newFacetFrame(vec{0, 0, 1}, vec{0, 0, 1})
-	w := c.extraordinary(&f, 1)
+	w := newUniaxial(vec{sin, 0, cos}, o, e).extraordinary(&f, 1)
 	return math.Acos(min(1, w.ray.dot(w.k)/w.k.length())) * 180 / math.Pi, w.k.length()
 }
 
@@ -52,37 +53,37 @@ func TestWalkOff(t *testing.T) {
 		{"Iceland crystal, 101°52' rhomb", 5.0 / 3, 1.4865, 44.61, 6 + 40.0/60, 0.25,
 			"Newton, Opticks, Query 25: the unusual ray parts by 6°40', measured by hand; ordinary ratio 5:3"},
 	} {
-		walk, _ := walkOff(newCrystal(vec{}, row.o, row.e), row.degree)
+		walk, _ := walkOff(row.o, row.e, row.degree)
 		near(t, row.name, walk, row.walk, row.tolerance, row.source)
 	}
 	most, at := 0.0, 0.0
 	for degree := 30.0; degree < 60; degree += 0.001 {
-		if w, _ := walkOff(newCrystal(vec{}, calciteO, calciteE), degree); w > most {
+		if w, _ := walkOff(calciteO, calciteE, degree); w > most {
 			most, at = w, degree
 		}
 	}
 	near(t, "calcite, where it is greatest", at, 41.865, 0.002, source+ghosh)
-	_, n := walkOff(newCrystal(vec{}, calciteO, calciteE), 45)
+	_, n := walkOff(calciteO, calciteE, 45)
 	near(t, "calcite, index at 45", n, 1.56517, 5e-6, "1/n² = cos²/no² + sin²/ne²; indices of "+ghosh)
 }
 
 // TestCalcitePlate sends light at normal incidence through 10 mm with the axis at 45
 // degrees: two rays come out side by side, as they went in.
 func TestCalcitePlate(t *testing.T) {
-	c := newCrystal(vec{math.Sqrt2 / 2, 0, math.Sqrt2 / 2}, calciteO, calciteE)
+	c := newUniaxial(vec{math.Sqrt2 / 2, 0, math.Sqrt2 / 2}, calciteO, calciteE)
 	b, err := newBody(solid(t, box(20, 20, 5)))
 	if err != nil {
 		t.Fatal(err)
 	}
 	down := vec{0, 0, -1}
 	l := fresh(down)
-	in := c.outside(&l, down, down, 1)
+	in := outside(c, &l, down, down, 1)
 	var at [2]vec
 	for i, w := range in.waves {
 		start := b.relative([3]float64{1, 2, 5})
 		k, s := b.exit(start, w.ray)
 		at[i] = fromMgl(b.place(start.plus(s, w.ray)))
-		out := c.inside(w.k, w.extra, b.normal[k], 1)
+		out := inside(c, w.k, w.extra, b.normal[k], 1)
 		near(t, "direction beyond the plate", out.out.plus(-1, down).length(), 0, 1e-12,
 			"both faces parallel")
 	}
@@ -95,11 +96,11 @@ func TestCalcitePlate(t *testing.T) {
 // TestAxisAcross has the axis in the face and across the plane of incidence: there
 // both waves obey Snell's law, and Fresnel's equations, each with its own index.
 func TestAxisAcross(t *testing.T) {
-	c := newCrystal(vec{0, 1, 0}, calciteO, calciteE)
+	c := newUniaxial(vec{0, 1, 0}, calciteO, calciteE)
 	sin, cos := math.Sincos(math.Pi / 4)
 	d, down := vec{sin, 0, -cos}, vec{0, 0, -1}
 	l := fresh(d)
-	in := c.outside(&l, d, down, 1)
+	in := outside(c, &l, d, down, 1)
 	angle := func(w wave) float64 { return math.Acos(w.ray.dot(down)) * 180 / math.Pi }
 	near(t, "ordinary ray", angle(in.waves[0]), 25.239, 5e-4, "asin(sin 45/no); "+ghosh)
 	near(t, "extraordinary ray", angle(in.waves[1]), 28.412, 5e-4, "asin(sin 45/ne); "+ghosh)
@@ -111,15 +112,67 @@ func TestAxisAcross(t *testing.T) {
 	near(t, "mirrored", in.mirrored.i, (p.Rp+s.Rs)/2, 1e-14, "Fresnel's equations")
 	near(t, "polarisation of what is mirrored", in.mirrored.q, (s.Rs-p.Rp)/2, 1e-14, "Fresnel's equations")
 
-	out := c.inside(in.waves[1].k, true, down, 1)
+	out := inside(c, in.waves[1].k, true, down, 1)
 	near(t, "extraordinary wave, from inside", out.power[1], s.Rs, 1e-14, "Fresnel's equation for s at ne")
 	near(t, "makes no ordinary one", out.power[0], 0, 1e-28, "symmetry about the plane of incidence")
 }
 
-// meeting is light that meets a facet of a crystal at random.
+// meeting is light that meets a facet of a uniaxial or a biaxial crystal at random.
 func meeting(rng *rand.Rand) (c crystal, v vec, m float64) {
+	o := turned(rng)
 	n := 1.3 + 1.5*rng.Float64()
-	return newCrystal(unit(rng), n, n*(1+0.3*(rng.Float64()-0.5))), unit(rng), 1 + rng.Float64()
+	e := n * (1 + 0.3*(rng.Float64()-0.5))
+	p := gems.Principal{n, n, e}
+	if rng.IntN(2) == 1 {
+		p[1] += (e - n) * rng.Float64()
+	}
+	return newCrystal(&o, p), unit(rng), 1 + rng.Float64()
+}
+
+// turned returns principal axes at random.
+func turned(rng *rand.Rand) orientation {
+	z := unit(rng)
+	x := unit(rng).cross(z)
+	x = x.scale(1 / x.length())
+	return orientation{x, z.cross(x), z}
+}
+
+// waveAlong returns the wave vector along the unit vector n of one of a crystal's waves.
+func waveAlong(c crystal, n vec, extra bool) vec {
+	waves := c.entering(newFacetFrame(n, n))
+	if extra {
+		return waves[1].k
+	}
+	return waves[0].k
+}
+
+// rayOf returns the direction of the ray of the wave k.
+func rayOf(c crystal, k vec, extra bool) vec {
+	return c.at(newFacetFrame(k.scale(1/k.length()), k), k, extra).ray
+}
+
+// dielectric returns a crystal's tensor in the frame of a facet: t, s, v.
+func dielectric(c crystal, f facetFrame) (eps [3][3]float64) {
+	add := func(k float64, d vec) {
+		parts := [3]float64{d.dot(f.t), d.dot(f.s), d.dot(f.v)}
+		for i := range 3 {
+			for j := range 3 {
+				eps[i][j] += k * parts[i] * parts[j]
+			}
+		}
+	}
+	switch c := c.(type) {
+	case *uniaxial:
+		across := fresh(c.axis)
+		add(c.o, across.a)
+		add(c.o, across.b)
+		add(c.e, c.axis)
+	case *biaxial:
+		for i, axis := range c.axes {
+			add(c.index[i]*c.index[i], axis)
+		}
+	}
+	return eps
 }
 
 // polarised returns a beam of one unit along d in a random state of full polarisation.
@@ -142,8 +195,8 @@ func TestCrystalKeepsAllLight(t *testing.T) {
 			d = d.scale(-1)
 		}
 		l := polarised(rng, d)
-		e := c.outside(&l, d, v, m)
-		near(t, "from outside", e.mirrored.i+e.power[0]+e.power[1], 1, 1e-11, source)
+		e := outside(c, &l, d, v, m)
+		near(t, "from outside", e.mirrored.i+e.power[0]+e.power[1], 1, 1e-12, source)
 		near(t, "what is mirrored stays polarised", math.Hypot(e.mirrored.q,
 			math.Hypot(e.mirrored.u, e.mirrored.v)), e.mirrored.i, 1e-11,
 			"a mirror does not depolarise")
@@ -155,8 +208,13 @@ func TestCrystalKeepsAllLight(t *testing.T) {
 			if u.dot(w.ray) < 0 {
 				u = u.scale(-1)
 			}
-			s := c.inside(w.k, w.extra, u, m)
-			near(t, "from inside", s.power[0]+s.power[1]+s.through.i, 1, 1e-10, source)
+			s := inside(c, w.k, w.extra, u, m)
+			all := s.power[0] + s.power[1] + s.through.i
+			if w.ray.dot(u) > 0.03 {
+				near(t, "from inside", all, 1, 1e-12, source)
+			} else { // rounding counts over the square of the cosine
+				near(t, "from inside, grazing", all, 1, singular, source)
+			}
 			if s.through.i == 0 {
 				total++
 				if s.back[0].flux == 0 || s.back[1].flux == 0 {
@@ -181,21 +239,21 @@ func TestCrystalReversed(t *testing.T) {
 			d = d.scale(-1)
 		}
 		l := fresh(d)
-		e := c.outside(&l, d, v, m)
+		e := outside(c, &l, d, v, m)
 		for i, w := range e.waves {
 			if e.power[i] == 0 {
 				continue
 			}
 			// Out again the way it came: the two polarisations of unpolarised light have
 			// half the power each.
-			s := c.inside(w.k.scale(-1), w.extra, v.scale(-1), m)
+			s := inside(c, w.k.scale(-1), w.extra, v.scale(-1), m)
 			near(t, "in and out", s.through.i, 2*e.power[i], 1e-10, source)
 			near(t, "direction", s.out.plus(1, d).length(), 0, 1e-10, source)
 			for j, back := range s.back {
 				if s.power[j] == 0 {
 					continue
 				}
-				again := c.inside(back.k.scale(-1), back.extra, v.scale(-1), m)
+				again := inside(c, back.k.scale(-1), back.extra, v.scale(-1), m)
 				near(t, "one wave into the other", again.power[i], s.power[j], 1e-10, source)
 			}
 		}
@@ -211,14 +269,7 @@ func TestCrystalReversed(t *testing.T) {
 // (1970) 830; Berreman, J. Opt. Soc. Am. 62 (1972) 502.
 func berreman(t *testing.T, c crystal, f facetFrame) (z []complex128, fields [4][]complex128) {
 	t.Helper()
-	axis := [3]float64{c.axis.dot(f.t), c.axis.dot(f.s), c.axis.dot(f.v)}
-	var eps [3][3]float64
-	for i := range 3 {
-		for j := range 3 {
-			eps[i][j] = (c.e - c.o) * axis[i] * axis[j]
-		}
-		eps[i][i] += c.o
-	}
+	eps := dielectric(c, f)
 	// From k x E = H and k x H = -eps E with k = (q, 0, z); 0 is t, 1 is s, 2 is v:
 	// Hv = q Es; Ev = -(eps20 Et + eps21 Es + q Hs)/eps22;
 	// z Et = Hs + q Ev; z Es = -Ht; z Hs = eps00 Et + eps01 Es + eps02 Ev;
@@ -291,17 +342,13 @@ func TestAgainstBerreman(t *testing.T) {
 	for range 3000 {
 		c, v, m := meeting(rng)
 		// A wave that runs toward the facet, from inside.
-		n := unit(rng)
-		k, extra := n.scale(math.Sqrt(c.o)), rng.IntN(2) == 1
-		if extra {
-			cos2 := n.dot(c.axis) * n.dot(c.axis)
-			k = n.scale(1 / math.Sqrt(cos2/c.o+(1-cos2)/c.e))
-		}
-		if c.ray(k, extra).dot(v) < 0 {
+		extra := rng.IntN(2) == 1
+		k := waveAlong(c, unit(rng), extra)
+		if rayOf(c, k, extra).dot(v) < 0 {
 			k = k.scale(-1)
 		}
 		f := newFacetFrame(v, k)
-		got := c.inside(k, extra, v, m)
+		got := inside(c, k, extra, v, m)
 		z, fields := berreman(t, c, f)
 
 		// The incident wave is the one with its z; those whose energy runs or decays

@@ -67,15 +67,27 @@ var mutations = []struct{ what, file, old, new string }{
 		"math.Sqrt(spread / (scramblings * (scramblings - 1)))", "math.Sqrt(spread / (scramblings - 1))"},
 	{"light below not seen by mirroring", "sums.go", "s[mirrorsLight] + below*s[mirrorsBelow]",
 		"s[mirrorsLight]"},
-	{"ray on the wrong side of the wave's normal", "crystal.go",
+	{"ray on the wrong side of the wave's normal", "crystal_uniaxial.go",
 		"k = k.scale(c.o).plus((c.e-c.o)*k.dot(c.axis), c.axis)",
 		"k = k.scale(c.o).plus((c.o-c.e)*k.dot(c.axis), c.axis)"},
-	{"tensor for its inverse", "crystal.go", "return d.plus((c.o/c.e-1)*d.dot(c.axis), c.axis)",
+	{"tensor for its inverse", "crystal_uniaxial.go", "return d.plus((c.o/c.e-1)*d.dot(c.axis), c.axis)",
 		"return d.plus((c.e/c.o-1)*d.dot(c.axis), c.axis)"},
-	{"absorption counted along the wave's normal", "crystal.go", "return along * c.ray(k, true).dot(k) / n",
+	{"absorption counted along the wave's normal", "crystal_uniaxial.go", "return along * c.ray(k, true).dot(k) / n",
 		"return along"},
-	{"extraordinary wave leaning the wrong way", "crystal.go", "a, b := c.o+d*cv*cv, d*qc*cv",
+	{"extraordinary wave leaning the wrong way", "crystal_uniaxial.go", "a, b := c.o+d*cv*cv, d*qc*cv",
 		"a, b := c.o+d*cv*cv, -d*qc*cv"},
+	{"optic axes at the wrong angle", "crystal_biaxial.go", "math.Sqrt((a-b)/(a-g)), math.Sqrt((b-g)/(a-g))",
+		"math.Sqrt((b-g)/(a-g)), math.Sqrt((a-b)/(a-g))"},
+	{"the faster wave's polarisation for the slower's", "crystal_biaxial.go", "	if sum == slower {\n		d = n.cross(d)",
+		"	if sum != slower {\n		d = n.cross(d)"},
+	{"second wave of a biaxial stone without the product of the roots", "crystal_biaxial.go",
+		"(z2/z4 - product - 2*middle*sum)", "(z2/z4 - product)"},
+	{"ray of a biaxial stone along the wave's normal", "crystal_biaxial.go", "ray: ray.scale(1 / ray.length()), extra: slower",
+		"ray: k.scale(1 / (k.length() + 0*ray.x)), extra: slower"},
+	{"evanescent wave of a biaxial stone with the other one's field", "crystal_biaxial.go",
+		"	if sum == slower {\n		d = k.cross(d)", "	if sum != slower {\n		d = k.cross(d)"},
+	{"absorption of a biaxial stone without the indices", "crystal_biaxial.go",
+		"lost += c.index[i] * natural[i] * along * along", "lost += natural[i] * along * along"},
 	{"fields beyond a facet that come instead of leave", "crystal.go",
 		"return w.ht + z*w.es, z*w.hs - m2*w.et", "return w.ht - z*w.es, z*w.hs - m2*w.et"},
 	{"power of a wave that goes in without the flux that comes", "crystal.go",
@@ -88,13 +100,14 @@ var mutations = []struct{ what, file, old, new string }{
 	{"the other wave chosen", "travel_crystal.go", "j.dice.roll()*(power[0]+power[1]) >= power[0]",
 		"j.dice.roll()*(power[0]+power[1]) < power[0]"},
 	{"absorption of the two waves exchanged", "travel_crystal.go",
-		"return c.absorption(k, extra, c.ordinary, c.extraordinary)",
-		"return c.absorption(k, extra, c.extraordinary, c.ordinary)"},
+		"return c.absorption(k, extra, c.natural)",
+		"return c.absorption(k, extra, [3]float64{c.natural[2], c.natural[1], c.natural[0]})"},
 }
 
 // quickTests are tried first on a mutation.
 const quickTests = "Fresnel|Critical|Retardance|Film|Slab|Prism|Roof|Minimum|Rod|AgainstSlow|TestPath|Frame|TestHead|MapIs|" +
-	"Dish|MeetAgainst|BodyColour|Ground|ClosedWhite|Soil|Lambert|Walk|Calcite|Axis|Crystal|Berreman|SmallBirefringence|Absorption|Doubling|Limits|Harding|TravellerAgrees"
+	"Dish|MeetAgainst|BodyColour|Ground|ClosedWhite|Soil|Lambert|Walk|Calcite|Axis|Optic|Principal|Crystal|Berreman|" +
+	"SmallBirefringence|Hollow|Denser|Absorption|Doubling|Limits|Harding|TravellerAgrees"
 
 // mutated is how the page lists one.
 func mutated(i int) string {

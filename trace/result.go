@@ -21,7 +21,7 @@ type Column struct {
 	IndexMedium   float64      // likewise
 	Critical      facets.Angle // at those indices; meaningful only if HasCritical
 	HasCritical   bool         // false where the stone is not the denser side
-	Limits        []Limit      // of a stone traced as doubly refracting, at the lower principal index, then at the higher; else nil
+	Limits        []Limit      // of a stone traced as doubly refracting, at each principal index, the lowest first; else nil
 	Ledger        Ledger       // means over the outline as seen
 	StandardError Ledger       // of those means, from independent scramblings
 	Lit           Lit
@@ -47,7 +47,7 @@ type Lit struct {
 }
 
 // Limit is the critical angle at one principal index of a doubly refracting stone.
-// The lower index has the larger critical angle, on which warnings rest.
+// The lowest index has the largest critical angle, on which warnings rest.
 type Limit struct {
 	Index       float64
 	Critical    facets.Angle // inside the stone, from the normal; meaningful only if HasCritical

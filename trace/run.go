@@ -5,6 +5,7 @@ import (
 	"errors"
 	"math"
 	"runtime"
+	"slices"
 	"sync"
 	"sync/atomic"
 	"time"
@@ -446,7 +447,9 @@ func (r *run) result() *Result {
 		c.Critical, c.HasCritical = CriticalAngle(c.IndexStone, c.IndexMedium)
 		if r.scene.double() {
 			p, _ := r.scene.Material.Indices(shown)
-			for _, n := range []float64{p.Least(), p.Greatest()} {
+			indices := p[:]
+			slices.Sort(indices)
+			for _, n := range slices.Compact(indices) {
 				l := Limit{Index: n}
 				l.Critical, l.HasCritical = CriticalAngle(n, c.IndexMedium)
 				c.Limits = append(c.Limits, l)

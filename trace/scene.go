@@ -18,18 +18,23 @@ type Scene struct {
 	Stone    *facets.Stone
 	Material *gems.Material // what the stone is made of; its body colour counts
 
-	// Axis is the direction of the optic axis in the stone's frame, of any length but 0.
-	// It counts for a uniaxial material, which then refracts doubly: both waves are
-	// followed, each along its own ray. The phase between the two is forgotten once they
-	// have parted: over a pixel and over the spectrum it runs through many turns in a
-	// stone that is thicker than a few wavelengths over its birefringence. Light close
-	// along the axis keeps it longer, and quartz turns the polarisation of such light;
-	// neither is modelled.
+	// Axis is, in the stone's frame and of any length but 0, the direction of the optic axis
+	// of a uniaxial material; of a biaxial one, which has two, the acute bisectrix: the
+	// direction that halves the acute angle between them. That is gamma's in a positive
+	// material and alpha's in a negative one. Plane is any direction that with Axis spans the
+	// plane of the two optic axes; it counts for a biaxial material alone, which needs it.
 	//
-	// With nil a uniaxial stone is traced as if singly refracting, at its ordinary index.
-	// Biaxial materials, which have two axes, are not followed doubly: an axis is refused
-	// for them. An isotropic one has none, and any axis leaves it as it is.
-	Axis *mgl64.Vec3
+	// The stone then refracts doubly: both waves are followed, each along its own ray. The
+	// phase between the two is forgotten once they have parted: over a pixel and over the
+	// spectrum it runs through many turns in a stone that is thicker than a few wavelengths
+	// over its birefringence. Light close along an optic axis keeps it longer, and quartz
+	// turns the polarisation of such light; neither is modelled. Exactly along an optic axis
+	// of a biaxial stone a ray spreads into a cone, of which two rays are followed.
+	//
+	// With nil a uniaxial stone is traced as if singly refracting, at its ordinary index, and
+	// a biaxial one at the mean of its three. An isotropic one has no axis, and any leaves it
+	// as it is.
+	Axis, Plane *mgl64.Vec3
 
 	Surroundings []Surrounding // one column each
 	Coatings     []Coating     // films on some tiers
@@ -93,13 +98,32 @@ const mostScatter = 100
 const liquidAbove = 0.5
 
 // double reports whether the stone is followed as doubly refracting.
-func (s Scene) double() bool { return s.Axis != nil && s.Material.Character().Uniaxial() }
+func (s Scene) double() bool { return s.Axis != nil && s.Material.Character() != gems.Isotropic }
+
+// orientation returns how the principal axes lie in a stone that is followed as doubly
+// refracting.
+func (s Scene) orientation() *orientation {
+	axis := fromMgl(s.Axis.Normalize())
+	character := s.Material.Character()
+	if !character.Biaxial() {
+		across := fresh(axis)
+		return &orientation{across.a, across.b, axis}
+	}
+	plane := fromMgl(s.Plane.Normalize())
+	plane = plane.plus(-plane.dot(axis), axis)
+	plane = plane.scale(1 / plane.length())
+	if character == gems.BiaxialPositive {
+		return &orientation{plane, axis.cross(plane), axis}
+	}
+	return &orientation{axis, axis.cross(plane), plane}
+}
 
 // leans reports whether the optic axis counts and does not point along the line of
-// sight, toward eye: then a stone with symmetric facets does not look symmetric.
+// sight, toward eye: then a stone with symmetric facets does not look symmetric. With two
+// optic axes it never does.
 func (s Scene) leans(eye vec) bool {
 	const along = 1e-9
-	return s.double() && fromMgl(s.Axis.Normalize()).cross(eye).length() > along
+	return s.double() && (s.Material.Character().Biaxial() || fromMgl(s.Axis.Normalize()).cross(eye).length() > along)
 }
 
 // clean reports whether column k is clean facets in one medium, far away from anything
@@ -172,17 +196,33 @@ func (s Scene) check() error {
 }
 
 func (s Scene) checkAxis() error {
-	a := *s.Axis
-	switch l := a.Len(); {
-	case l == 0:
-		return errors.New("the optic axis has length zero: give it a direction, or leave it out")
-	case !(l > 0) || math.IsInf(l, 0):
-		return fmt.Errorf("the optic axis %v is no direction: give it finite numbers, or leave it out", a)
-	case s.Material.Character().Biaxial():
-		return fmt.Errorf("%s is biaxial, with two optic axes: light in it is not followed doubly; leave the axis out to "+
-			"trace it at its mean index", s.Material.Name)
-	case s.double() && len(s.Coatings) > 0:
+	direction := func(what string, a *mgl64.Vec3) error {
+		switch l := a.Len(); {
+		case l == 0:
+			return fmt.Errorf("the %s has length zero: give it a direction, or leave it out", what)
+		case !(l > 0) || math.IsInf(l, 0):
+			return fmt.Errorf("the %s %v is no direction: give it finite numbers, or leave it out", what, *a)
+		}
+		return nil
+	}
+	if err := direction("optic axis", s.Axis); err != nil {
+		return err
+	}
+	if s.double() && len(s.Coatings) > 0 {
 		return errors.New("a film on a doubly refracting stone is not followed: leave out the film or the optic axis")
+	}
+	if !s.Material.Character().Biaxial() {
+		return nil
+	}
+	if s.Plane == nil {
+		return fmt.Errorf("%s is biaxial: give the plane of its two optic axes beside their bisectrix", s.Material.Name)
+	}
+	if err := direction("plane of the optic axes", s.Plane); err != nil {
+		return err
+	}
+	const apart = 1e-6
+	if s.Axis.Normalize().Cross(s.Plane.Normalize()).Len() < apart {
+		return errors.New("the direction in the plane of the optic axes lies along their bisectrix: give another one in that plane")
 	}
 	return nil
 }
@@ -232,8 +272,7 @@ func (s Scene) traveller(k int, settings Settings, plain *tracer) *traveller {
 	around := s.Surroundings[k]
 	t := &traveller{tracer: plain, colour: s.Material.Absorption}
 	if s.double() {
-		a := fromMgl(s.Axis.Normalize())
-		t.axis = &a
+		t.axes = s.orientation()
 	}
 	for _, f := range s.Stone.Facets {
 		medium := around.Medium

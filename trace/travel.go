@@ -17,7 +17,7 @@ import (
 type traveller struct {
 	*tracer
 	colour *gems.Absorption // nil for none
-	axis   *vec             // optic axis, unit; nil for a singly refracting stone
+	axes   *orientation     // of a doubly refracting stone; nil for a singly refracting one
 
 	medium []*gems.Material // behind each facet
 	film   []*Film          // on each facet; nil for none
@@ -51,7 +51,7 @@ type leg struct {
 	light   beam
 	inside  bool
 	k       vec     // wave vector inside a doubly refracting stone; d is then the ray
-	extra   bool    // there, the extraordinary wave
+	extra   bool    // there, the extraordinary or slower wave
 	path    float64 // inside the stone so far, in units of the stone
 	strewn  bool    // has been scattered
 	mirror  bool    // only mirrored so far, by the first surface
@@ -70,7 +70,7 @@ type lambda struct {
 	medium []float64 // behind each facet
 	liquid float64   // of the dish
 	absorb float64   // natural absorption per unit of the stone
-	twin   twin      // of a doubly refracting stone: meaningful only if the traveller has an axis
+	twin   twin      // of a doubly refracting stone: meaningful only if the traveller has axes
 }
 
 // look looks up all indices at w; every material is known to have one there.
@@ -90,10 +90,11 @@ func (t *traveller) look(w gems.Wavelength, stone *gems.Material, at *lambda) {
 	if t.dish != nil {
 		at.liquid, _ = t.dish.liquid.Index(w)
 	}
-	if t.axis != nil {
+	if t.axes != nil {
 		p, _ := stone.Indices(w)
 		o, e := t.colour.Coefficient(w)
-		at.twin = twin{newCrystal(*t.axis, p.Ordinary(), p.Extraordinary()), o * t.body.unit, e * t.body.unit}
+		o, e = o*t.body.unit, e*t.body.unit
+		at.twin = twin{newCrystal(t.axes, p), [3]float64{o, o, e}}
 	} else {
 		at.absorb = meanAbsorption(t.colour, w) * t.body.unit
 	}
@@ -148,7 +149,7 @@ func (t *traveller) sendBy(facet int, x, d vec, at *lambda, dice dice, sums *sum
 	for len(j.stack) > 0 {
 		l := j.stack[len(j.stack)-1]
 		j.stack = j.stack[:len(j.stack)-1]
-		if l.inside && j.axis != nil {
+		if l.inside && j.axes != nil {
 			j.runDouble(l)
 		} else if l.inside {
 			j.run(l)
@@ -186,7 +187,7 @@ func (j *journey) land(k int, l leg) {
 		j.count(l, l.d)
 		return
 	}
-	if j.axis != nil {
+	if j.axes != nil {
 		j.landDouble(k, l)
 		return
 	}

@@ -10,15 +10,15 @@ import (
 // stone, beside its crystal.
 type twin struct {
 	crystal
-	ordinary, extraordinary float64
+	natural [3]float64 // of light that vibrates along each principal axis
 }
 
 // along returns the absorption of a wave per unit of its ray's way.
 func (c *twin) along(k vec, extra bool) float64 {
-	if c.ordinary == 0 && c.extraordinary == 0 {
+	if c.natural == [3]float64{} {
 		return 0
 	}
-	return c.absorption(k, extra, c.ordinary, c.extraordinary)
+	return c.absorption(k, extra, c.natural)
 }
 
 // bothWaves is the power, as a share of the viewing ray, from which both waves of light
@@ -29,7 +29,7 @@ const bothWaves = 0.1
 // landDouble is land on a doubly refracting stone.
 func (j *journey) landDouble(k int, l leg) {
 	n := j.body.normal[k]
-	e := j.twin.outside(&l.light, l.d, n.scale(-1), j.lambda.medium[k])
+	e := outside(j.twin.crystal, &l.light, l.d, n.scale(-1), j.lambda.medium[k])
 	off := l
 	off.d, off.light = l.d.plus(-2*l.d.dot(n), n), e.mirrored
 	in := beam{i: e.power[0] + e.power[1]}
@@ -82,7 +82,7 @@ func (j *journey) runDouble(l leg) {
 				return
 			}
 		}
-		at := j.twin.inside(l.k, l.extra, b.normal[k], j.lambda.medium[k])
+		at := inside(j.twin.crystal, l.k, l.extra, b.normal[k], j.lambda.medium[k])
 		all := l.light.i
 		through := at.through
 		if through.i > 0 {

@@ -14,21 +14,31 @@ import (
 	"pavilight/gems"
 )
 
-// uniaxial is a material of constant indices.
-func uniaxial(t testing.TB, name string, ordinary, extraordinary float64) *gems.Material {
+// ofIndices is a material of constant indices: two for a uniaxial one, three for a
+// biaxial one.
+func ofIndices(t testing.TB, name string, indices ...float64) *gems.Material {
 	t.Helper()
-	m := plain(t, name, ordinary)
-	m.Rays = append(m.Rays, plain(t, name, extraordinary).Rays[0])
+	m := plain(t, name, indices[0])
+	for _, n := range indices[1:] {
+		m.Rays = append(m.Rays, plain(t, name, n).Rays[0])
+	}
 	return m
+}
+
+// about returns principal axes of which the third is an optic axis.
+func about(axis vec) *orientation {
+	across := fresh(axis)
+	return &orientation{across.a, across.b, axis}
 }
 
 // doubleSlow follows both waves at every facet by recursion.
 type doubleSlow struct {
 	slow
-	c     crystal
-	a, x  float64 // natural absorption per mm of the ordinary and the extraordinary ray
-	deep  int     // bounces after which what is left counts as unresolved
-	equal bool    // the isotropic oracle
+	c      crystal
+	axis   mgl64.Vec3 // of the isotropic oracle
+	absorb [3]float64 // natural absorption per mm along the principal axes
+	deep   int        // bounces after which what is left counts as unresolved
+	equal  bool       // the isotropic oracle
 }
 
 // sheds enters light that leaves along out.
@@ -53,7 +63,7 @@ func (o *doubleSlow) enter(facet int, x mgl64.Vec3) Ledger {
 		return o.ledger
 	}
 	l := fresh(fromMgl(d))
-	e := o.c.outside(&l, fromMgl(d), fromMgl(v), o.m)
+	e := outside(o.c, &l, fromMgl(d), fromMgl(v), o.m)
 	o.ledger = Ledger{Surface: e.mirrored.i}
 	for i, w := range e.waves {
 		o.wave(facet, x, w, e.power[i], 0)
@@ -80,10 +90,10 @@ func (o *doubleSlow) wave(from int, x mgl64.Vec3, w wave, power float64, depth i
 		return
 	}
 	exit, x, s := o.next(from, x, w.ray.mgl())
-	left := math.Exp(-o.c.absorption(w.k, w.extra, o.a, o.x) * s)
+	left := math.Exp(-o.c.absorption(w.k, w.extra, o.absorb) * s)
 	o.ledger.Absorbed += power * (1 - left)
 	power *= left
-	at := o.c.inside(w.k, w.extra, fromMgl(o.planes[exit].Normal), o.m)
+	at := inside(o.c, w.k, w.extra, fromMgl(o.planes[exit].Normal), o.m)
 	o.sheds(power*at.through.i, at.out.mgl())
 	for i, b := range at.back {
 		o.wave(exit, x, b, power*at.power[i], depth+1)
@@ -93,7 +103,7 @@ func (o *doubleSlow) wave(from int, x mgl64.Vec3, w wave, power float64, depth i
 // part is the isotropic oracle: one index, but the fields along d are split into the same
 // two directions as a crystal's waves have, and the phase between those is forgotten.
 func (o *doubleSlow) part(from int, x, d mgl64.Vec3, es []field, depth int) {
-	a := d.Cross(o.c.axis.mgl()).Normalize()
+	a := d.Cross(o.axis).Normalize()
 	b := d.Cross(a)
 	for _, dir := range []mgl64.Vec3{a, b} {
 		sum := 0.0
@@ -135,12 +145,12 @@ func TestSmallBirefringence(t *testing.T) {
 			x := tr.body.place(at)
 			oracle := doubleSlow{deep: 8, equal: true,
 				slow: slow{planes: s.Facets, n: 1.7, m: 1.333, eye: tr.outline.eye.mgl(), headCos: 2}}
-			oracle.c.axis = axis
+			oracle.axis = axis.mgl()
 			want := oracle.enter(facet, x)
 			near(t, "sum", want.Sum(), 1, 1e-9, "light is neither made nor lost")
 			for _, birefringence := range []float64{1e-5, 1e-7} {
 				o := oracle
-				o.equal, o.c = false, newCrystal(axis, 1.7, 1.7+birefringence)
+				o.equal, o.c = false, newUniaxial(axis, 1.7, 1.7+birefringence)
 				got := o.enter(facet, x)
 				for q := range quantities {
 					differ[birefringence] += math.Abs(q.Of(got) - q.Of(want))
@@ -166,7 +176,7 @@ func TestSmallBirefringence(t *testing.T) {
 // far apart and each wave has its colour.
 func TestChosenBranches(t *testing.T) {
 	rng := rand.New(rand.NewPCG(9, 2))
-	stone, air := uniaxial(t, "stone", 1.8, 1.55), plain(t, "air", 1)
+	stone, air := ofIndices(t, "stone", 1.8, 1.55), plain(t, "air", 1)
 	const throws = 1500
 	// One ray a stone, five entries, two-sided: a level of 0.001 altogether.
 	const limit = 4.3
@@ -174,16 +184,16 @@ func TestChosenBranches(t *testing.T) {
 		tr := general(t, s, View{Tilt: 0.2, Turn: facets.Angle(rng.Float64() * 6)}, air, false)
 		tr.faint, tr.headCos = 1e-4, math.Cos(10*math.Pi/180)
 		axis := unit(rng)
-		tr.axis = &axis
+		tr.axes = about(axis)
 		at := at550(tr, stone)
 		unit := tr.body.unit
-		at.twin.ordinary, at.twin.extraordinary = 0.2, 0.05
+		at.twin.natural = [3]float64{0.2, 0.2, 0.05}
 		facet, x, ok := tr.outline.enter(tr.outline.half*0.31, tr.outline.half*0.17)
 		if !ok {
 			continue
 		}
 		o := doubleSlow{slow: slow{planes: s.Facets, m: 1, eye: tr.outline.eye.mgl(), headCos: tr.headCos},
-			c: at.twin.crystal, a: 0.2 / unit, x: 0.05 / unit, deep: 13}
+			c: at.twin.crystal, absorb: [3]float64{0.2 / unit, 0.2 / unit, 0.05 / unit}, deep: 13}
 		want := o.enter(facet, tr.body.place(x))
 		near(t, name+": sum of both", want.Sum(), 1, 1e-9, "light is neither made nor lost")
 		var mean, spread Ledger
@@ -217,7 +227,7 @@ func (q Quantity) in(l *Ledger) *float64 {
 // TestDoubleScenes lets doubly refracting stones meet all there is around them.
 func TestDoubleScenes(t *testing.T) {
 	rng := rand.New(rand.NewPCG(9, 4))
-	stone := uniaxial(t, "stone", 1.925, 1.984)
+	stone := ofIndices(t, "stone", 1.925, 1.984)
 	air, water := plain(t, "air", 1), plain(t, "water", 1.333)
 	for name, s := range each(stones(t)) {
 		tier := ""
@@ -269,7 +279,7 @@ func TestDichroism(t *testing.T) {
 	const source = "Beer-Lambert law for each wave in the geometric series of a plate"
 	const ordinary, extraordinary = 3.0, 0.1 // per mm
 	s := solid(t, box(200, 200, 0.5))        // 1 mm thick
-	m := uniaxial(t, "tourmaline", 1.64, 1.62)
+	m := ofIndices(t, "tourmaline", 1.64, 1.62)
 	m.Absorption = &gems.Absorption{Wavelengths: []gems.Wavelength{400}, Ordinary: []float64{ordinary},
 		Extraordinary: []float64{extraordinary}}
 	through := func(axis mgl64.Vec3) float64 {
@@ -297,7 +307,7 @@ func TestAbsorptionByDirection(t *testing.T) {
 	rng := rand.New(rand.NewPCG(9, 3))
 	for range 200 {
 		const no, ne, small = 1.64, 1.5, 1e-7
-		c := newCrystal(vec{0, 0, 1}, no, ne)
+		c := newUniaxial(vec{0, 0, 1}, no, ne)
 		a, x := rng.Float64(), rng.Float64()
 		d := unit(rng)
 		cos2 := complex(d.z*d.z, 0)
@@ -305,7 +315,7 @@ func TestAbsorptionByDirection(t *testing.T) {
 		n := cmplx.Sqrt(1 / (cos2/(o*o) + (1-cos2)/(e*e)))
 		k := d.scale(real(n))
 		// Along the ray a slab's thickness is longer than along the normal.
-		near(t, "per length of the normal", c.absorption(k, true, a, x)/c.ray(k, true).dot(d), imag(n)/small,
+		near(t, "per length of the normal", c.absorption(k, true, [3]float64{a, a, x})/c.ray(k, true).dot(d), imag(n)/small,
 			1e-6, source)
 	}
 }
@@ -315,7 +325,7 @@ func TestAbsorptionByDirection(t *testing.T) {
 func doubled(c crystal, depth float64) float64 {
 	down := vec{0, 0, -1}
 	l := fresh(down)
-	in := c.outside(&l, down, down, 1)
+	in := outside(c, &l, down, down, 1)
 	o, e := in.waves[0].ray, in.waves[1].ray
 	return o.scale(depth/-o.z).plus(-depth/-e.z, e).length()
 }
@@ -326,7 +336,7 @@ func TestDoubling(t *testing.T) {
 	const minute = math.Pi / 180 / 60
 	const source = "walk-off times depth, over the reading distance of 300 mm; 1 minute of arc is what the eye parts"
 	tilted := vec{math.Sqrt2 / 2, 0, math.Sqrt2 / 2}
-	apart := func(o, e float64) float64 { return doubled(newCrystal(tilted, o, e), 5) / 300 / minute }
+	apart := func(o, e float64) float64 { return doubled(newUniaxial(tilted, o, e), 5) / 300 / minute }
 	near(t, "zircon 5 mm deep, minutes", apart(1.925, 1.984), 5*math.Tan(1.729*math.Pi/180)/300/minute, 2e-3,
 		source)
 	z, c, q := apart(1.925, 1.984), apart(1.76808, 1.76), apart(1.54421, 1.55331)
@@ -347,8 +357,8 @@ func TestDoubling(t *testing.T) {
 		{Normal: mgl64.Vec3{0, -1, 0}, Distance: 4, Side: facets.Girdle},
 	})
 	tr := general(t, s, View{}, plain(t, "air", 1), false)
-	tr.axis = &tilted
-	at := at550(tr, uniaxial(t, "zircon", 1.925, 1.984))
+	tr.axes = about(tilted)
+	at := at550(tr, ofIndices(t, "zircon", 1.925, 1.984))
 	width := 5 * math.Tan(1.729*math.Pi/180)
 	first := func(x float64) float64 { // what leaves where the ray first meets the pavilion
 		j := &journey{traveller: tr, lambda: at, sums: &sums{}}
@@ -386,7 +396,7 @@ func doubledStep(f func(float64) float64, width float64) float64 {
 
 func TestAxisFaults(t *testing.T) {
 	scene := lump(t)
-	scene.Material = uniaxial(t, "zircon", 1.925, 1.984)
+	scene.Material = ofIndices(t, "zircon", 1.925, 1.984)
 	topaz, err := gems.Find("topaz")
 	if err != nil {
 		t.Fatal(err)
@@ -416,7 +426,7 @@ func TestAxisFaults(t *testing.T) {
 // TestLimits gives the critical angle at both indices where light is refracted doubly.
 func TestLimits(t *testing.T) {
 	scene := lump(t)
-	scene.Material, scene.Axis = uniaxial(t, "zircon", 1.925, 1.984), &mgl64.Vec3{0, 1, 0}
+	scene.Material, scene.Axis = ofIndices(t, "zircon", 1.925, 1.984), &mgl64.Vec3{0, 1, 0}
 	limits := untraced(t, scene, Settings{Wavelength: 589.3}).result().Columns[0].Limits
 	if len(limits) != 2 {
 		t.Fatalf("%d limits, want 2", len(limits))
@@ -444,7 +454,7 @@ func untraced(t *testing.T, scene Scene, settings Settings) *run {
 // TestAxisBreaksSymmetry traces one sector of a symmetric stone only where the axis
 // points along the line of sight.
 func TestAxisBreaksSymmetry(t *testing.T) {
-	scene := Scene{Stone: brilliant(t), Material: uniaxial(t, "zircon", 1.925, 1.984),
+	scene := Scene{Stone: brilliant(t), Material: ofIndices(t, "zircon", 1.925, 1.984),
 		Surroundings: Around(plain(t, "air", 1))}
 	for _, row := range []struct {
 		axis   *mgl64.Vec3
@@ -461,7 +471,7 @@ func TestAxisBreaksSymmetry(t *testing.T) {
 // that it does not.
 func TestFollowTellsOfDoubleRefraction(t *testing.T) {
 	scene := lump(t)
-	scene.Material = uniaxial(t, "zircon", 1.925, 1.984)
+	scene.Material = ofIndices(t, "zircon", 1.925, 1.984)
 	for _, axis := range []*mgl64.Vec3{nil, {0, 0, 1}} {
 		scene.Axis = axis
 		p, ok, err := Follow(scene, 0, Settings{}, 0.5, 0.5)
