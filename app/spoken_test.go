@@ -16,6 +16,7 @@ import (
 	"slices"
 	"strings"
 	"testing"
+	"unicode"
 
 	"github.com/pelletier/go-toml/v2"
 
@@ -84,6 +85,15 @@ func keysOf(t *testing.T) []spoken {
 	return found
 }
 
+// alike reports whether a text is the same in every language: verbs, signs, units and
+// names of tiers alone.
+func alike(key string) bool {
+	for _, pattern := range []string{`%[^a-zA-Z%]*[a-zA-Z]`, `\b(mm|ct|g|cm|Y)\b`, `\b[A-Z]\d+\b`} {
+		key = regexp.MustCompile(pattern).ReplaceAllString(key, "")
+	}
+	return !strings.ContainsFunc(key, unicode.IsLetter)
+}
+
 // checkFilled reports a call that fills in a text with too few or too many things: one whose
 // last arguments are any, with the text before.
 func checkFilled(t *testing.T, call *ast.CallExpr, info *types.Info, keyOf func(ast.Expr) (string, bool), where func(ast.Expr) string) {
@@ -124,7 +134,7 @@ func TestEveryTextIsSaid(t *testing.T) {
 		}
 		missing, needless := map[string]string{}, maps.Clone(catalog)
 		for _, s := range said {
-			if _, ok := catalog[s.key]; !ok {
+			if _, ok := catalog[s.key]; !ok && !alike(s.key) {
 				missing[s.key] = s.where
 			}
 			delete(needless, s.key)

@@ -4,6 +4,8 @@ import (
 	"errors"
 	"os"
 	"time"
+
+	"pavilight/app/words"
 )
 
 // Lock is a claim on a file, which ends with the program however that ends.
@@ -80,7 +82,7 @@ func holdTarget(path string) (release func(), err error) {
 		}
 		f.Close()
 		if held && time.Now().After(end) {
-			return nil, errors.New(path + " is being written by another program; try again, or save under another name")
+			return nil, words.Errorf("%s is being written by another program; try again, or save under another name", path)
 		}
 	}
 }

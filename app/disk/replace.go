@@ -3,8 +3,6 @@
 package disk
 
 import (
-	"errors"
-	"fmt"
 	"io"
 	"io/fs"
 	"os"
@@ -12,6 +10,8 @@ import (
 	"runtime"
 	"strings"
 	"time"
+
+	"pavilight/app/words"
 )
 
 // Replace replaces the file at path as a whole or leaves it as it was: the
@@ -30,9 +30,9 @@ func ReplaceKnown(path string, known Stamp, write func(io.Writer) error) (Stamp,
 	err := replace(path, func(w io.Writer) error { return write(io.MultiWriter(w, sum)) }, func(target string) error {
 		switch now := StampOf(target); {
 		case now.Unreachable():
-			return fmt.Errorf("%s cannot be read, so nothing tells whether other hands wrote to it; save under another name", path)
+			return words.Errorf("%s cannot be read, so nothing tells whether other hands wrote to it; save under another name", path)
 		case now != known && !now.Absent():
-			return fmt.Errorf("%s: %w", path, ErrChanged)
+			return words.Errorf("%s: %v", path, ErrChanged)
 		}
 		return nil
 	})
@@ -43,7 +43,7 @@ func ReplaceKnown(path string, known Stamp, write func(io.Writer) error) (Stamp,
 }
 
 // ErrChanged tells that a file holds something else than the program believes.
-var ErrChanged = errors.New("the file was changed by another program or window since it was read; nothing was written")
+var ErrChanged = words.Errorf("the file was changed by another program or window since it was read; nothing was written")
 
 // replace writes the new file. Before it takes the name mayTake is asked, and from then on
 // nobody else replaces the target.
@@ -55,13 +55,13 @@ func replace(path string, write func(io.Writer) error, mayTake func(target strin
 	mode := fs.FileMode(0o644)
 	if info, err := os.Stat(target); err == nil {
 		if info.IsDir() {
-			return fmt.Errorf("%s is a folder; give the file another name", path)
+			return words.Errorf("%s is a folder; give the file another name", path)
 		}
 		if !info.Mode().IsRegular() {
-			return fmt.Errorf("%s is a device or the like, no file that can be replaced; give the file another name", path)
+			return words.Errorf("%s is a device or the like, no file that can be replaced; give the file another name", path)
 		}
 		if info.Mode().Perm()&0o200 == 0 {
-			return fmt.Errorf("%s is write-protected; save under another name", path)
+			return words.Errorf("%s is write-protected; save under another name", path)
 		}
 		mode = info.Mode().Perm()
 	}

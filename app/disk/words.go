@@ -2,9 +2,10 @@ package disk
 
 import (
 	"errors"
-	"fmt"
 	"io/fs"
 	"path/filepath"
+
+	"pavilight/app/words"
 )
 
 // trouble is what may keep a file from being written, as the systems number it.
@@ -25,7 +26,7 @@ const (
 // InWords says why a file could not be written and what to do.
 func InWords(path string, err error) error {
 	folder := filepath.Dir(path)
-	told := func(format string, args ...any) error { return &wordedError{fmt.Sprintf(format, args...), err} }
+	told := func(text words.Key, args ...any) error { return &wordedError{words.Later(text, args...), err} }
 	var worded *wordedError
 	switch {
 	case errors.As(err, &worded), errors.Is(err, ErrChanged):
@@ -60,9 +61,13 @@ func InWords(path string, err error) error {
 
 // wordedError is an error that was put into words once.
 type wordedError struct {
-	words string
-	err   error
+	said words.Text
+	err  error
 }
 
-func (e *wordedError) Error() string { return e.words }
+func (e *wordedError) Error() string { return e.said.String() }
+
+// Saying returns what the error says, for any language.
+func (e *wordedError) Saying() words.Text { return e.said }
+
 func (e *wordedError) Unwrap() error { return e.err }

@@ -1,13 +1,12 @@
 package model
 
 import (
-	"errors"
-	"fmt"
 	"math"
 	"strconv"
 	"strings"
 	"unicode"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
@@ -15,32 +14,32 @@ import (
 // 41 deg 48 min, 41° 48' 30". Degrees must be whole where minutes follow, and
 // minutes whole where seconds follow. The error says what was expected.
 func ParseAngle(text string) (facets.Angle, error) {
-	const example = "write it as 41.8, 41,8 or 41°48'"
+	const example words.Key = "write it as 41.8, 41,8 or 41°48'"
 	parts, err := numbersWithUnits(text)
 	if err != nil {
-		return 0, fmt.Errorf("%w; %s", err, example)
+		return 0, words.Errorf("%v; %s", err, example)
 	}
 	if len(parts) == 0 {
-		return 0, errors.New("no angle given; " + example)
+		return 0, words.Errorf("no angle given; %s", example)
 	}
 	degrees := 0.0
 	scale := 1.0 // degrees in one unit of the part
 	for i, p := range parts {
 		if got, want := p.unit, angleUnits[i]; got != want && !(got == "" && i == 0) {
-			return 0, fmt.Errorf("%q is not an angle; %s", strings.TrimSpace(text), example)
+			return 0, words.Errorf("%q is not an angle; %s", strings.TrimSpace(text), example)
 		}
 		if i > 0 && parts[i-1].value != math.Trunc(parts[i-1].value) {
-			return 0, fmt.Errorf("a fraction of %s cannot be followed by %s; %s",
+			return 0, words.Errorf("a fraction of %s cannot be followed by %s; %s",
 				angleWords[i-1], angleWords[i], example)
 		}
 		if i > 0 && p.value >= 60 {
-			return 0, fmt.Errorf("%s go from 0 to 59; %s", angleWords[i], example)
+			return 0, words.Errorf("%s go from 0 to 59; %s", angleWords[i], example)
 		}
 		degrees += p.value * scale
 		scale /= 60
 	}
 	if degrees >= 360 {
-		return 0, errors.New("an angle of a full turn or more; " + example)
+		return 0, words.Errorf("an angle of a full turn or more; %s", example)
 	}
 	return facets.Angle(degrees) * facets.Degree, nil
 }
@@ -65,17 +64,17 @@ func ParseNumber(text, unit string) (float64, error) {
 	text = strings.TrimSpace(strings.TrimSuffix(strings.TrimSpace(text), unit))
 	parts, err := numbersWithUnits(text)
 	if err != nil {
-		return 0, fmt.Errorf("%w; write it as 8.5 or 8,5", err)
+		return 0, words.Errorf("%v; write it as 8.5 or 8,5", err)
 	}
 	if len(parts) != 1 || parts[0].unit != "" {
-		return 0, fmt.Errorf("%q is not a number; write it as 8.5 or 8,5", text)
+		return 0, words.Errorf("%q is not a number; write it as 8.5 or 8,5", text)
 	}
 	return parts[0].value, nil
 }
 
 var (
 	angleUnits = [...]string{"°", "'", `"`, ""}
-	angleWords = [...]string{"degrees", "minutes", "seconds", ""}
+	angleWords = [...]words.Key{"degrees", "minutes", "seconds", ""}
 )
 
 // quantity is one number and the unit that follows it, in the short form.
@@ -96,7 +95,7 @@ func numbersWithUnits(text string) ([]quantity, error) {
 		digits := strings.ReplaceAll(rest[:end], ",", ".")
 		value, err := strconv.ParseFloat(digits, 64)
 		if err != nil || len(digits) > 24 || len(parts) == 3 {
-			return nil, fmt.Errorf("%q is not a number", shorten(strings.TrimSpace(text)))
+			return nil, words.Errorf("%q is not a number", shorten(strings.TrimSpace(text)))
 		}
 		rest = strings.TrimSpace(rest[end:])
 		end = strings.IndexFunc(rest, unicode.IsDigit)
@@ -105,7 +104,7 @@ func numbersWithUnits(text string) ([]quantity, error) {
 		}
 		unit, known := unitOf(strings.TrimSpace(rest[:end]))
 		if !known {
-			return nil, fmt.Errorf("%q is not a number", shorten(strings.TrimSpace(text)))
+			return nil, words.Errorf("%q is not a number", shorten(strings.TrimSpace(text)))
 		}
 		parts = append(parts, quantity{value, unit})
 		rest = rest[end:]

@@ -3,7 +3,6 @@ package model
 import (
 	"bytes"
 	"errors"
-	"fmt"
 	"io"
 	"math"
 	"os"
@@ -48,6 +47,9 @@ func NewBench(doc *Document, do func(func()), onLook func(Change), onPlan func()
 
 // SetWords has the bench and the maps speak a language; before, it is English.
 func (b *Bench) SetWords(w *words.Words) { b.words, b.Look.words = w, w }
+
+// Words are those of the language that the bench speaks.
+func (b *Bench) Words() *words.Words { return b.words }
 
 // Begin asks for the maps of the plan.
 func (b *Bench) Begin() { b.show() }
@@ -247,14 +249,14 @@ func (b *Bench) Tiers() []TierRow {
 	if err != nil {
 		material = b.Look.Subject.Material
 	}
-	return b.tiers.rows(b.Doc.Plan(), b.Look.Subject.Stone, criticalTicks(material, b.Look.Around))
+	return b.tiers.rows(b.words, b.Doc.Plan(), b.Look.Subject.Stone, criticalTicks(b.words, material, b.Look.Around))
 }
 
 // SetAngle gives a tier another angle. With merge the step joins the one before if
 // that set the same tier's angle, as the steps of a drag do until Settle.
 func (b *Bench) SetAngle(tier int, angle facets.Angle, merge bool) error {
 	if !(angle > 0 && angle < 90*facets.Degree) {
-		return errors.New("a facet's angle lies between 0°, the table's, and 90°, the girdle's")
+		return words.Errorf("a facet's angle lies between 0°, the table's, and 90°, the girdle's")
 	}
 	t := b.Doc.Plan().Tiers[tier]
 	if t.HasAngle && math.Abs((t.Angle-angle).Degrees()) < sameAngle {
@@ -278,7 +280,7 @@ const sameAngle = 5e-7
 func (b *Bench) SetWidth(mm float64) error {
 	const narrowest, widest = 0.1, 1000 // mm; beyond, it is a slip of the pen
 	if !(mm >= narrowest && mm <= widest) {
-		return fmt.Errorf("a stone is from %v to %v mm wide", narrowest, widest)
+		return words.Errorf("a stone is from %v to %v mm wide", narrowest, widest)
 	}
 	if mm == b.Doc.Plan().WidthMM {
 		return nil
@@ -335,11 +337,11 @@ func (b *Bench) Select(tier string) {
 
 // Troubles says why the present plan cannot be shown, one fault a line; empty when
 // it is shown.
-func (b *Bench) Troubles() []string { return InWords(b.Look.Trouble) }
+func (b *Bench) Troubles() []string { return InWords(b.words, b.Look.Trouble) }
 
 // InWords returns what an error says, one fault a line, nil for none. Files are
 // named without their folders, which the window has no room for.
-func InWords(err error) []string {
+func InWords(w *words.Words, err error) []string {
 	if err == nil {
 		return nil
 	}
@@ -359,5 +361,5 @@ func InWords(err error) []string {
 		short.File = filepath.Base(one.File)
 		return []string{short.Error()}
 	}
-	return strings.Split(err.Error(), "\n")
+	return strings.Split(w.Error(err), "\n")
 }

@@ -225,7 +225,7 @@ func TestOpenKeepsTheBenchWhenThePlanCannotBeHad(t *testing.T) {
 			if told == nil || p.Doc != doc {
 				t.Errorf("%s: error %v, document replaced %v", filepath.Base(path), told, p.Doc != doc)
 			}
-			for _, line := range InWords(told) {
+			for _, line := range InWords(nil, told) {
 				if strings.Contains(line, folder) {
 					t.Errorf("%q names the folder, for which there is no room", line)
 				}
@@ -270,8 +270,8 @@ func TestDocumentNames(t *testing.T) {
 		{"  Émeraude / 7? ", "", "  Émeraude / 7? ", "meraude-7.plan.toml"},
 	} {
 		d := NewDocument(&facets.Plan{Name: c.name}, c.path)
-		if d.Title() != c.title || d.FileName() != c.file {
-			t.Errorf("%q at %q: title %q, file %q; want %q, %q", c.name, c.path, d.Title(), d.FileName(), c.title, c.file)
+		if d.Title(nil) != c.title || d.FileName() != c.file {
+			t.Errorf("%q at %q: title %q, file %q; want %q, %q", c.name, c.path, d.Title(nil), d.FileName(), c.title, c.file)
 		}
 	}
 }
@@ -290,7 +290,7 @@ func TestRayTellsThePath(t *testing.T) {
 	if r == nil || r.Path == nil {
 		t.Fatal("no path")
 	}
-	lines, more := r.Lines()
+	lines, more := r.Lines(nil)
 	if len(lines)+more != len(r.Path.Bounces)+1 {
 		t.Errorf("%d lines and %d more for %d bounces and an entry", len(lines), more, len(r.Path.Bounces))
 	}
@@ -305,7 +305,7 @@ func TestRayTellsThePath(t *testing.T) {
 	if math.Abs(sum-1) > perRay {
 		t.Errorf("the shares sum to %v", sum)
 	}
-	if rows := strings.Count(r.Text(), "\n"); rows != len(r.Path.Bounces)+4 {
+	if rows := strings.Count(r.Text(nil), "\n"); rows != len(r.Path.Bounces)+4 {
 		t.Errorf("the text has %d lines for %d bounces", rows, len(r.Path.Bounces))
 	}
 	// Drawn pieces hang together: each piece inside begins where the one before ended.
@@ -337,12 +337,12 @@ func TestRayTellsThePath(t *testing.T) {
 	if !d.Dish || d.Liquid <= 0 || math.Abs(sum-1) > perRay {
 		t.Errorf("in a dish the shares sum to %v, of which the liquid mirrors %v", sum, d.Liquid)
 	}
-	if text := p.Look.Ray.Text(); !strings.Contains(text, "in a dish of water") || !strings.Contains(text, "liquid's surface") {
+	if text := p.Look.Ray.Text(nil); !strings.Contains(text, "in a dish of water") || !strings.Contains(text, "liquid's surface") {
 		t.Errorf("a ray in a dish is told as %s", text)
 	}
 	p.Look.Follow(0, 0.01, 0.01)
-	if p.Look.Ray.Path != nil || !strings.Contains(p.Look.Ray.Title(), "beside") {
-		t.Errorf("a ray beside the stone: %q", p.Look.Ray.Title())
+	if p.Look.Ray.Path != nil || !strings.Contains(p.Look.Ray.Title(nil), "beside") {
+		t.Errorf("a ray beside the stone: %q", p.Look.Ray.Title(nil))
 	}
 }
 

@@ -2,8 +2,6 @@ package model
 
 import (
 	"context"
-	"errors"
-	"fmt"
 	"image"
 	"io"
 	"os"
@@ -16,6 +14,7 @@ import (
 	"pavilight/app/disk"
 	"pavilight/app/drawing"
 	"pavilight/app/sheet"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 )
@@ -52,6 +51,7 @@ type Cut struct {
 
 	do       func(func())
 	onChange func()
+	words    *words.Words
 	subject  cutSubject
 	light    sheet.Job // holds the traced light of the subject; its Light is nil before
 	pages    []*drawing.Page
@@ -85,6 +85,9 @@ func NewCut(machines sheet.Machines, do func(func()), onChange func()) *Cut {
 	c.painter = painter{do: do, open: &c.open}
 	return c
 }
+
+// SetWords has what is told beside the sheet said in a language; before, it is English.
+func (c *Cut) SetWords(w *words.Words) { c.words = w }
 
 // SetSubject lays out the sheet of a plan, unless that is what is in view.
 func (c *Cut) SetSubject(plan *facets.Plan, material *gems.Material, around []Around, head facets.Angle, program string) {
@@ -128,7 +131,7 @@ func ReadGears(text string) ([]int, error) {
 	for _, word := range strings.FieldsFunc(text, func(r rune) bool { return r == ',' || r == ' ' || r == ';' }) {
 		n, err := strconv.Atoi(word)
 		if err != nil || n < 3 || n > 1000 {
-			return nil, fmt.Errorf("%q is no gear; give numbers of teeth, 3 to 1000, with commas between", word)
+			return nil, words.Errorf("%q is no gear; give numbers of teeth, 3 to 1000, with commas between", word)
 		}
 		gears = append(gears, n)
 	}
@@ -295,7 +298,7 @@ func (c *Cut) Notes() []string {
 	}
 	notes := c.Sheet.Notes()
 	if c.Stopped && c.Wish.Maps && c.Sheet.Light == nil {
-		notes = append(notes, "stopped: the sheet is without its maps and ledger")
+		notes = append(notes, c.words.Say("stopped: the sheet is without its maps and ledger"))
 	}
 	return notes
 }
@@ -379,14 +382,14 @@ func (c *Cut) Print(show func(path string) error, done func(path string, err err
 // its path. It replaces none.
 func (c *Cut) NewMachine(name string) (string, error) {
 	if name == "" || name != filepath.Base(name) || strings.HasPrefix(name, ".") || strings.ContainsAny(name, `/\:*?"<>|`) {
-		return "", fmt.Errorf("%q cannot be the name of a machine, for it names a file; use letters, digits and spaces", name)
+		return "", words.Errorf("%q cannot be the name of a machine, for it names a file; use letters, digits and spaces", name)
 	}
 	if c.Machines == "" {
-		return "", errors.New("the system has no folder for settings; keep the machine's file elsewhere and use pavilight cut --machine FILE")
+		return "", words.Errorf("the system has no folder for settings; keep the machine's file elsewhere and use pavilight cut --machine FILE")
 	}
 	path := filepath.Join(string(c.Machines), name+".toml")
 	if _, err := os.Stat(path); err == nil {
-		return "", fmt.Errorf("there is a machine named %s already; choose it, or take another name", name)
+		return "", words.Errorf("there is a machine named %s already; choose it, or take another name", name)
 	}
 	if err := os.MkdirAll(string(c.Machines), 0o700); err != nil {
 		return "", err

@@ -66,13 +66,13 @@ func (d *Document) RedoName() (words.Text, bool) { return d.history.redoName() }
 func (d *Document) Modified() bool { return d.history.modified() }
 
 // Title names the plan, with a star while it differs from its file.
-func (d *Document) Title() string {
+func (d *Document) Title(w *words.Words) string {
 	name := d.Plan().Name
 	if name == "" && d.Path != "" {
 		name = filepath.Base(d.Path)
 	}
 	if name == "" {
-		name = "unnamed plan"
+		name = w.Say("unnamed plan")
 	}
 	if d.Modified() {
 		name += "*"

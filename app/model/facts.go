@@ -1,9 +1,10 @@
 package model
 
 import (
-	"fmt"
 	"strconv"
 	"strings"
+
+	"pavilight/app/words"
 )
 
 // Carats returns the subject's weight, false where its density is not known.
@@ -21,7 +22,7 @@ func (s Subject) Carats() (float64, bool) {
 // Weight returns the stone's weight in words, empty where it is not known.
 func (b *Bench) Weight() string {
 	if ct, ok := b.Look.Subject.Carats(); ok {
-		return fmt.Sprintf("%.2f ct", ct)
+		return b.words.Say("%.2f ct", ct)
 	}
 	return ""
 }
@@ -33,23 +34,23 @@ func (b *Bench) Facts() [][2]string {
 	if s.Stone == nil {
 		return nil
 	}
-	m := s.Measures
+	m, say := s.Measures, b.words.Say
 	facts := append(b.tierFacts(), [][2]string{
-		{"Stone", ""},
-		{"Width", fmt.Sprintf("%.3f mm", m.WidthMM)},
-		{"Length", fmt.Sprintf("%.3f mm", m.LengthMM)},
-		{"Depth", fmt.Sprintf("%.3f mm", m.DepthMM)},
-		{"Table", fmt.Sprintf("%.2f %% of width", m.TablePercent)},
-		{"Crown height", fmt.Sprintf("%.2f %%", m.CrownHeightPercent)},
-		{"Pavilion depth", fmt.Sprintf("%.2f %%", m.PavilionDepthPercent)},
-		{"Girdle", fmt.Sprintf("%.2f to %.2f %%", m.GirdlePercent.Min, m.GirdlePercent.Max)},
-		{"Facets", strconv.Itoa(len(s.Stone.Facets))},
-		{"Volume", fmt.Sprintf("%.2f mm³", m.VolumeMM3)},
+		{say("Stone"), ""},
+		{say("Width"), say("%.3f mm", m.WidthMM)},
+		{say("Length"), say("%.3f mm", m.LengthMM)},
+		{say("Depth"), say("%.3f mm", m.DepthMM)},
+		{say("Table"), say("%.2f %% of width", m.TablePercent)},
+		{say("Crown height"), say("%.2f %%", m.CrownHeightPercent)},
+		{say("Pavilion depth"), say("%.2f %%", m.PavilionDepthPercent)},
+		{say("Girdle"), say("%.2f to %.2f %%", m.GirdlePercent.Min, m.GirdlePercent.Max)},
+		{say("Facets"), strconv.Itoa(len(s.Stone.Facets))},
+		{say("Volume"), say("%.2f mm³", m.VolumeMM3)},
 	}...)
 	if ct, ok := s.Carats(); ok {
-		facts = append(facts, [2]string{"Weight", fmt.Sprintf("%.3f ct", ct)})
+		facts = append(facts, [2]string{say("Weight"), say("%.3f ct", ct)})
 	} else {
-		facts = append(facts, [2]string{"Weight", "density not known"})
+		facts = append(facts, [2]string{say("Weight"), say("density not known")})
 	}
 	return facts
 }
@@ -66,14 +67,15 @@ func (b *Bench) tierFacts() [][2]string {
 		if !t.HasAngle {
 			angle = foundAngle(b.Look.Subject.Stone, t.Name)
 		}
+		say := b.words.Say
 		facts := [][2]string{
 			{t.Name, ""},
-			{"Angle", FormatAngle(angle) + "°"},
-			{"Facets", strconv.Itoa(len(t.Indices(plan.Gear)))},
-			{"Index", indexWords(t.Indices(plan.Gear))},
+			{say("Angle"), b.words.Decimal(FormatAngle(angle)) + "°"},
+			{say("Facets"), strconv.Itoa(len(t.Indices(plan.Gear)))},
+			{say("Index"), indexWords(b.words, t.Indices(plan.Gear))},
 		}
 		if t.Note != "" {
-			facts = append(facts, [2]string{"Note", t.Note})
+			facts = append(facts, [2]string{say("Note"), t.Note})
 		}
 		return facts
 	}
@@ -81,28 +83,29 @@ func (b *Bench) tierFacts() [][2]string {
 }
 
 // indexWords writes index settings, separated by spaces.
-func indexWords(teeth []float64) string {
-	words := make([]string, len(teeth))
+func indexWords(w *words.Words, teeth []float64) string {
+	all := make([]string, len(teeth))
 	for i, t := range teeth {
-		words[i] = strconv.FormatFloat(t, 'f', -1, 64)
+		all[i] = w.Decimal(strconv.FormatFloat(t, 'f', -1, 64))
 	}
-	return strings.Join(words, " ")
+	return strings.Join(all, " ")
 }
 
 // LightInWords says how the stone is looked at, for the status line.
 func (l *Look) LightInWords() string {
 	s := l.settings
-	light := "even light from above"
+	say := l.words.Say
+	light := say("even light from above")
 	if s.Below > 0 {
-		light += fmt.Sprintf(", %.2g from below", s.Below)
+		light = say("%s, %.2g from below", light, s.Below)
 	}
-	waves := "spectrum 400 to 700 nm"
+	waves := say("spectrum 400 to 700 nm")
 	if s.Wavelength != 0 {
 		waves = s.Wavelength.String()
 	}
-	polarisation := "polarisation carried along"
+	polarisation := say("polarisation carried along")
 	if s.Averaged {
-		polarisation = "polarisation averaged at every facet"
+		polarisation = say("polarisation averaged at every facet")
 	}
 	return strings.Join([]string{light, waves, polarisation}, "  ·  ")
 }

@@ -1,9 +1,9 @@
 package model
 
 import (
-	"fmt"
 	"strings"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
@@ -30,14 +30,15 @@ func (c *Cut) Film() (FilmStep, bool) {
 	s := c.Sheet
 	r := &s.Rows[c.Step-1]
 	f := FilmStep{Stone: r.Step.Stone, Whole: c.whole, Tier: r.Tier.Name, Facing: r.Facing, Turned: r.Turn}
-	f.Title = fmt.Sprintf("%d of %d   %s", r.Number, len(s.Rows), r.Tier.Name)
-	add := func(name, words string) { f.Facts = append(f.Facts, [2]string{name, words}) }
+	say := c.words.Say
+	f.Title = say("%d of %d   %s", r.Number, len(s.Rows), r.Tier.Name)
+	add := func(name words.Key, value string) { f.Facts = append(f.Facts, [2]string{say(name), value}) }
 	if r.Turn {
-		add("First", "turn the stone: the "+strings.ToLower(r.Facing.String())+" faces the lap now")
+		add("First", say("turn the stone: the %s faces the lap now", c.words.Within(say(SideName(r.Facing)))))
 	} else {
-		add("To the lap", strings.ToLower(r.Facing.String()))
+		add("To the lap", c.words.Within(say(SideName(r.Facing))))
 	}
-	add("Set", fmt.Sprintf("%.2f°", r.Reading.Degrees()))
+	add("Set", say("%.2f°", r.Reading.Degrees()))
 	var indices []string
 	for _, set := range r.Settings {
 		indices = append(indices, set.String())
@@ -46,15 +47,15 @@ func (c *Cut) Film() (FilmStep, bool) {
 	add("Until", strings.TrimPrefix(r.Stop, "until "))
 	before := c.Off(c.Step - 1)
 	if len(r.Step.New) == 0 {
-		add("Takes off", "nothing of this rough")
+		add("Takes off", say("nothing of this rough"))
 	} else {
-		add("Takes off", fmt.Sprintf("%.1f mm³, %.1f %% of the rough", r.Step.Removed, 100*(c.Off(c.Step)-before)))
-		add("Layer", fmt.Sprintf("%.2f mm where it is thickest", r.Step.Depth))
+		add("Takes off", say("%.1f mm³, %.1f %% of the rough", r.Step.Removed, 100*(c.Off(c.Step)-before)))
+		add("Layer", say("%.2f mm where it is thickest", r.Step.Depth))
 	}
-	add("So far", fmt.Sprintf("%.0f %% of the rough is off", 100*c.Off(c.Step)))
+	add("So far", say("%.0f %% of the rough is off", 100*c.Off(c.Step)))
 	if !r.Tier.Temporary {
-		add("A slip", fmt.Sprintf("0.05 mm too deep costs %.2f mm of width or height, and %.1f %% of the weight "+
-			"if the rest is cut smaller to match", r.TooDeepMM, r.TooDeepPct))
+		add("A slip", say("%.2f mm too deep costs %.2f mm of width or height, and %.1f %% of the weight "+
+			"if the rest is cut smaller to match", 0.05, r.TooDeepMM, r.TooDeepPct))
 	}
 	if note := strings.TrimSpace(r.Tier.Note); note != "" {
 		add("Note", note)
@@ -63,20 +64,21 @@ func (c *Cut) Film() (FilmStep, bool) {
 }
 
 func (c *Cut) filmOfRough() FilmStep {
-	words := fmt.Sprintf("a box %.0f %% larger than the stone; the plan names no rough", 100*facets.BlockMargin)
+	say := c.words.Say
+	rough := say("a box %.0f %% larger than the stone; the plan names no rough", 100*facets.BlockMargin)
 	switch {
 	case c.Sheet.Rough.Stone != nil:
-		words = c.Sheet.Rough.Words
+		rough = c.Sheet.Rough.Words
 	case c.Sheet.Rough.TooSmall:
-		words = "a box around the stone; the plan's rough does not hold it along its axes"
+		rough = say("a box around the stone; the plan's rough does not hold it along its axes")
 	}
-	f := FilmStep{Title: "Before the first cut", Stone: c.whole, Whole: c.whole, Facing: facets.Pavilion}
+	f := FilmStep{Title: say("Before the first cut"), Stone: c.whole, Whole: c.whole, Facing: facets.Pavilion}
 	if len(c.Sheet.Rows) > 0 {
 		f.Facing = c.Sheet.Rows[0].Facing
 	}
-	f.Facts = [][2]string{{"Rough", words}, {"Volume", fmt.Sprintf("%.1f mm³", c.whole.Volume())}}
+	f.Facts = [][2]string{{say("Rough"), rough}, {say("Volume"), say("%.1f mm³", c.whole.Volume())}}
 	if carats, ok := c.Sheet.Carats(c.whole.Volume()); ok {
-		f.Facts = append(f.Facts, [2]string{"Weight", fmt.Sprintf("%.2f ct", carats)})
+		f.Facts = append(f.Facts, [2]string{say("Weight"), say("%.2f ct", carats)})
 	}
 	return f
 }

@@ -7,6 +7,7 @@ import (
 
 	"github.com/go-gl/mathgl/mgl64"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/trace"
 )
@@ -19,7 +20,7 @@ type Ray struct {
 	Around Around
 	Stone  *facets.Stone
 	Path   *trace.Path // nil where there is none
-	Why    string      // there is no path
+	Why    error       // there is no path
 	Step   int         // the bounce picked in the list; -1 for none
 	Beside *Ray        // from the same place in another column's surrounding; nil for none
 }
@@ -92,13 +93,13 @@ func (l *Look) followAgain() {
 // followed returns a ray with its path through the stone that the maps show now.
 func (l *Look) followed(r Ray) Ray {
 	f := l.Frame
-	r.Around, r.Stone, r.Path, r.Why = f.Around[r.Column], f.Subject.Stone, nil, ""
+	r.Around, r.Stone, r.Path, r.Why = f.Around[r.Column], f.Subject.Stone, nil, nil
 	scene := trace.Scene{Stone: f.Subject.Stone, Material: f.Subject.Material, Surroundings: surroundings(f.Around)}
 	switch path, ok, err := trace.Follow(scene, r.Column, f.Settings, r.X, r.Y); {
 	case err != nil:
-		r.Why = err.Error()
+		r.Why = err
 	case !ok:
-		r.Why = "it passes beside the stone"
+		r.Why = words.Errorf("it passes beside the stone")
 	default:
 		r.Path = path
 		r.Step = min(r.Step, len(path.Bounces)-1)
@@ -107,18 +108,18 @@ func (l *Look) followed(r Ray) Ray {
 }
 
 // Title says what is followed, in which surrounding, against which critical angle.
-func (r *Ray) Title() string {
-	title := "Ray in " + strings.ToLower(shortName(r.Around.Medium))
+func (r *Ray) Title(w *words.Words) string {
+	medium := w.Within(shortName(w, r.Around.Medium))
 	if r.Around.Dish {
-		title = "Ray in a dish of " + strings.ToLower(shortName(r.Around.Medium))
+		medium = w.Say("a dish of %s", medium)
 	}
 	switch {
 	case r.Path == nil:
-		return title + ": " + r.Why
+		return w.Say("Ray in %s: %s", medium, r.Why)
 	case r.Path.HasCritical:
-		return fmt.Sprintf("%s, critical angle %.2f°", title, r.Path.Critical.Degrees())
+		return w.Say("Ray in %s, critical angle %.2f°", medium, r.Path.Critical.Degrees())
 	}
-	return title + ", no critical angle"
+	return w.Say("Ray in %s, no critical angle", medium)
 }
 
 // RayLine is one line of the list of a ray: its entry, or a bounce.
@@ -136,31 +137,31 @@ type RayLine struct {
 const mostRayLines = 24
 
 // Lines tells the ray bounce by bounce, and how many bounces more there are.
-func (r *Ray) Lines() (lines []RayLine, more int) {
+func (r *Ray) Lines(w *words.Words) (lines []RayLine, more int) {
 	if r.Path == nil {
 		return nil, 0
 	}
 	p := r.Path
 	lines = append(lines, RayLine{
-		Facet:  facetName(r.Stone, p.Facet),
-		Angle:  fmt.Sprintf("%.1f°", p.Incidence.Degrees()),
-		Stayed: fmt.Sprintf("%.3f", 1-p.Liquid-p.Surface),
-		Left:   fmt.Sprintf("%.3f", p.Surface),
-		Goes:   "mirror",
+		Facet:  facetName(w, r.Stone, p.Facet),
+		Angle:  w.Say("%.1f°", p.Incidence.Degrees()),
+		Stayed: w.Say("%.3f", 1-p.Liquid-p.Surface),
+		Left:   w.Say("%.3f", p.Surface),
+		Goes:   w.Say("mirror|noun"),
 		Entry:  trace.Surface,
 	})
 	for i, b := range p.Bounces[:min(len(p.Bounces), mostRayLines)] {
 		line := RayLine{
 			Number: fmt.Sprint(i + 1),
-			Facet:  facetName(r.Stone, b.Facet),
-			Angle:  fmt.Sprintf("%.1f°", b.Incidence.Degrees()),
-			Stayed: fmt.Sprintf("%.3f", b.Stayed),
-			Goes:   "total",
+			Facet:  facetName(w, r.Stone, b.Facet),
+			Angle:  w.Say("%.1f°", b.Incidence.Degrees()),
+			Stayed: w.Say("%.3f", b.Stayed),
+			Goes:   w.Say("total|reflection"),
 		}
 		if !b.Total {
-			line.Left = fmt.Sprintf("%.3f", b.Left)
-			line.Goes = map[trace.Quantity]string{trace.Returned: "up", trace.Head: "head", trace.Leaked: "down",
-				trace.Unresolved: "back"}[b.Goes]
+			line.Left = w.Say("%.3f", b.Left)
+			line.Goes = w.Say(map[trace.Quantity]words.Key{trace.Returned: "up", trace.Head: "head", trace.Leaked: "down",
+				trace.Unresolved: "back"}[b.Goes])
 			line.Entry = b.Goes
 		}
 		lines = append(lines, line)
@@ -169,52 +170,53 @@ func (r *Ray) Lines() (lines []RayLine, more int) {
 }
 
 // facetName names a facet by its tier and tooth: P1@12, or its number in a scan.
-func facetName(stone *facets.Stone, facet int) string {
+func facetName(w *words.Words, stone *facets.Stone, facet int) string {
 	f := &stone.Facets[facet]
 	switch {
 	case f.Tier == "":
-		return fmt.Sprintf("facet %d", facet+1)
+		return w.Say("facet %d", facet+1)
 	case math.IsNaN(f.Index):
 		return f.Tier
 	}
-	return fmt.Sprintf("%s@%g", f.Tier, math.Round(f.Index*100)/100)
+	return w.Say("%s@%g", f.Tier, math.Round(f.Index*100)/100)
 }
 
 // Text tells the whole ray as a table for the clipboard or a file, columns apart by
 // tabs, and after it the one beside.
-func (r *Ray) Text() string {
+func (r *Ray) Text(w *words.Words) string {
 	if r.Beside != nil {
-		return r.text() + "\n" + r.Beside.text()
+		return r.write(w) + "\n" + r.Beside.write(w)
 	}
-	return r.text()
+	return r.write(w)
 }
 
-func (r *Ray) text() string {
+func (r *Ray) write(w *words.Words) string {
 	var b strings.Builder
-	fmt.Fprintln(&b, r.Title())
+	fmt.Fprintln(&b, r.Title(w))
 	if r.Path == nil {
 		return b.String()
 	}
 	p := r.Path
-	fmt.Fprintf(&b, "wavelength %v, index %.4f in %.4f\n", p.Wavelength, p.IndexStone, p.IndexMedium)
+	fmt.Fprintln(&b, w.Say("wavelength %v, index %.4f in %.4f", p.Wavelength, p.IndexStone, p.IndexMedium))
 	if p.Dish {
-		fmt.Fprintf(&b, "mirrored by the liquid's surface: %.6f\n", p.Liquid)
+		fmt.Fprintln(&b, w.Say("mirrored by the liquid's surface: %.6f", p.Liquid))
 	}
-	fmt.Fprintln(&b, "bounce\tfacet\tincidence in degrees\tstayed\tleft\tgoes\tdegrees from the eye")
-	fmt.Fprintf(&b, "entry\t%s\t%.3f\t%.6f\t%.6f\tmirrored\t\n", facetName(r.Stone, p.Facet), p.Incidence.Degrees(), 1-p.Liquid-p.Surface, p.Surface)
+	fmt.Fprintln(&b, w.Say("bounce\tfacet\tincidence in degrees\tstayed\tleft\tgoes\tdegrees from the eye"))
+	fmt.Fprintln(&b, w.Say("entry\t%s\t%.3f\t%.6f\t%.6f\tmirrored\t", facetName(w, r.Stone, p.Facet), p.Incidence.Degrees(), 1-p.Liquid-p.Surface, p.Surface))
 	for i, s := range p.Bounces {
-		goes, from := "total reflection", ""
+		goes, from := w.Say("total reflection"), ""
 		if !s.Total {
-			goes, from = s.Goes.String(), fmt.Sprintf("%.3f", s.FromEye.Degrees())
+			goes = w.Say(map[trace.Quantity]words.Key{trace.Returned: "returned", trace.Head: "head", trace.Leaked: "leaked"}[s.Goes])
+			from = w.Say("%.3f", s.FromEye.Degrees())
 			switch {
 			case s.Goes == trace.Unresolved:
-				goes, from = "sent back by the liquid's surface", ""
+				goes, from = w.Say("sent back by the liquid's surface"), ""
 			case s.Back > 0:
-				goes += fmt.Sprintf(", %.6f of it sent back by the liquid's surface", s.Back)
+				goes = w.Say("%s, %.6f of it sent back by the liquid's surface", goes, s.Back)
 			}
 		}
-		fmt.Fprintf(&b, "%d\t%s\t%.3f\t%.6f\t%.6f\t%s\t%s\n",
-			i+1, facetName(r.Stone, s.Facet), s.Incidence.Degrees(), s.Stayed, s.Left, goes, from)
+		fmt.Fprintln(&b, w.Say("%d\t%s\t%.3f\t%.6f\t%.6f\t%s\t%s",
+			i+1, facetName(w, r.Stone, s.Facet), s.Incidence.Degrees(), s.Stayed, s.Left, goes, from))
 	}
 	return b.String()
 }

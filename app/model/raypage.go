@@ -8,6 +8,7 @@ import (
 
 	"pavilight/app/drawing"
 	"pavilight/app/solid"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/trace"
 )
@@ -24,28 +25,28 @@ const (
 // Page draws the followed ray for print: the stone from the side and from above with
 // the ray in it, and a line a bounce below. The side view looks across the ray's first
 // way inside. The ray beside it, if any, is dashed, its list at the right.
-func (r *Ray) Page(stone string) *drawing.Page {
+func (r *Ray) Page(w *words.Words, stone string) *drawing.Page {
 	p := &drawing.Page{Width: rayPageWide}
 	ink := drawing.Grey(0)
 	y := rayPageEdge + 4.0
 	p.Write(drawing.Type{Size: 12, Bold: true}, ink, drawing.Left, drawing.Point{X: rayPageEdge, Y: y}, stone)
 	y += 4
 	views := []struct {
-		name string
+		name words.Key
 		pose solid.Pose
 	}{{"from the side", r.sidePose()}, {"from above, index 0 up", solid.FaceUp()}}
 	for k, v := range views {
 		at := drawing.Point{X: rayPageEdge + float64(k)*(rayPageWide-2*rayPageEdge-rayPageView), Y: y}
 		r.drawView(p, at, v.pose)
 		p.Write(drawing.Type{Size: 8}, drawing.Grey(90), drawing.Middle,
-			drawing.Point{X: at.X + rayPageView/2, Y: at.Y + rayPageView + 3}, v.name)
+			drawing.Point{X: at.X + rayPageView/2, Y: at.Y + rayPageView + 3}, w.Say(v.name))
 	}
 	y += rayPageView + 10
 	bottom := y
 	for k, one := range []*Ray{r, r.Beside} {
 		if one != nil {
 			x := rayPageEdge + float64(k)*rayPageWide/2
-			bottom = max(bottom, one.writeList(p, drawing.Point{X: x, Y: y}, k == 1))
+			bottom = max(bottom, one.writeList(w, p, drawing.Point{X: x, Y: y}, k == 1))
 		}
 	}
 	p.Height = bottom + rayPageEdge
@@ -139,28 +140,28 @@ func stretchInk(s Stretch) drawing.Ink {
 }
 
 // writeList writes a line a bounce and returns the y of the last.
-func (r *Ray) writeList(p *drawing.Page, at drawing.Point, dashed bool) float64 {
+func (r *Ray) writeList(in *words.Words, p *drawing.Page, at drawing.Point, dashed bool) float64 {
 	head, body := drawing.Type{Size: 9, Bold: true}, drawing.Type{Size: 8}
-	title := r.Title()
+	title := r.Title(in)
 	if dashed {
-		title += " (dashed)"
+		title = in.Say("%s (dashed)", title)
 	}
 	const wide = rayPageWide/2 - rayPageEdge - 2
 	p.Write(head, drawing.Grey(0), drawing.Left, at, head.Cut(title, wide))
-	lines, more := r.Lines()
+	lines, more := r.Lines(in)
 	if len(lines) > rayPageMost {
 		more += len(lines) - rayPageMost
 		lines = lines[:rayPageMost]
 	}
 	starts := []float64{0, 7, 25, 42, 58}
-	row := func(words ...string) {
+	row := func(cells ...string) {
 		at.Y += rayPageRow
-		for i, w := range words {
-			p.Write(body, drawing.Grey(0), drawing.Left, drawing.Point{X: at.X + starts[i], Y: at.Y}, w)
+		for i, c := range cells {
+			p.Write(body, drawing.Grey(0), drawing.Left, drawing.Point{X: at.X + starts[i], Y: at.Y}, c)
 		}
 	}
 	if len(lines) > 0 {
-		row("", "facet", "incidence", "stays", "leaves")
+		row("", in.Say("facet"), in.Say("incidence"), in.Say("stays"), in.Say("leaves"))
 	}
 	for _, l := range lines {
 		leaves := l.Goes
@@ -170,7 +171,7 @@ func (r *Ray) writeList(p *drawing.Page, at drawing.Point, dashed bool) float64 
 		row(l.Number, l.Facet, l.Angle, l.Stayed, leaves)
 	}
 	if more > 0 {
-		row("", fmt.Sprintf("and %d more, each carrying less", more))
+		row("", in.Say("and %d more, each carrying less", more))
 	}
 	return at.Y
 }

@@ -43,7 +43,7 @@ func TestRayBesideIsRefractedByItsOwnMedium(t *testing.T) {
 			t.Errorf("in %.3f the ray is refracted to sine %v, want %v", path.IndexMedium, sin, want)
 		}
 	}
-	if got := r.Text(); strings.Count(got, "wavelength") != 2 {
+	if got := r.Text(nil); strings.Count(got, "wavelength") != 2 {
 		t.Errorf("the text does not tell both:\n%s", got)
 	}
 	p.Look.Follow(0, 0.6, 0.35)
@@ -64,7 +64,7 @@ func TestRayBesideIsRefractedByItsOwnMedium(t *testing.T) {
 // The page shows all that there is, within its edges.
 func TestRayPage(t *testing.T) {
 	p := followedTwice(t)
-	page := p.Look.Ray.Page("Harbour Eight")
+	page := p.Look.Ray.Page(nil, "Harbour Eight")
 	words, dashed := "", 0
 	for _, m := range page.Marks {
 		var points []drawing.Point

@@ -18,6 +18,7 @@ import (
 	"time"
 
 	"pavilight/app/disk"
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
@@ -188,7 +189,7 @@ func (r *Recovery) Find() ([]Recovered, error) {
 				aside = file
 			}
 			r.release(file)
-			faults = append(faults, fmt.Errorf("unsaved work of an earlier run cannot be read (%w); the file lies at %s", err, aside))
+			faults = append(faults, words.Errorf("unsaved work of an earlier run cannot be read (%v); the file lies at %s", err, aside))
 		case work == nil:
 			os.Remove(file)
 			r.release(file)
@@ -255,7 +256,7 @@ func readKept(file string) (k kept, saved time.Time, err error) {
 		return k, saved, err
 	}
 	if info.Size() > mostKept {
-		return k, saved, fmt.Errorf("it holds %d bytes, more than any plan", info.Size())
+		return k, saved, words.Errorf("it holds %d bytes, more than any plan", info.Size())
 	}
 	content, err := os.ReadFile(file)
 	if err == nil {

@@ -1,13 +1,11 @@
 package model
 
 import (
-	"fmt"
 	"image"
 	"math"
-	"strconv"
-	"strings"
 
 	"pavilight/app/picture"
+	"pavilight/app/words"
 	"pavilight/trace"
 )
 
@@ -37,7 +35,7 @@ func Choices() []Shown {
 }
 
 // ShownName returns what a row of maps is called.
-func ShownName(s Shown) string {
+func ShownName(s Shown) words.Key {
 	switch s {
 	case PathLength:
 		return "Path length"
@@ -48,7 +46,7 @@ func ShownName(s Shown) string {
 }
 
 // ShownMeaning says what a row of maps shows, in a few words.
-func ShownMeaning(s Shown) string {
+func ShownMeaning(s Shown) words.Key {
 	switch s {
 	case PathLength:
 		return "mean way inside of the light that comes out, in mm"
@@ -123,8 +121,8 @@ func findLight(name string) (*trace.Light, error) {
 }
 
 // LightName returns what a light is called on the screen.
-func LightName(name string) string {
-	return map[string]string{
+func LightName(name string) words.Key {
+	return map[string]words.Key{
 		"even": "even daylight", "overcast": "overcast sky", "clear": "clear sky, no sun", "sun": "sun and clear sky",
 		"room": "room with a window", "lamps": "small lamps", "ring": "ring of light",
 	}[name]
@@ -313,11 +311,11 @@ func (l *Look) Scale(row int) Scale {
 func (l *Look) ValueText(row int, v float64) string {
 	switch l.Row[row] {
 	case PathLength:
-		return fmt.Sprintf("%.1f mm", v)
+		return l.words.Say("%.1f mm", v)
 	case TrueColour:
-		return fmt.Sprintf("Y %.2f", v) // CIE 1931, of the white diffuser 1
+		return l.words.Say("Y %.2f", v) // CIE 1931, of the white diffuser 1
 	}
-	return strconv.FormatFloat(v, 'f', 3, 64)
+	return l.words.Say("%.3f", v)
 }
 
 // stripEntry is the entry of the ledger that the strip shows: the first row's, light
@@ -331,5 +329,5 @@ func (l *Look) stripEntry() trace.Quantity {
 
 // StripMeaning says what the curves of the strip are.
 func (l *Look) StripMeaning() string {
-	return "mean " + strings.ToLower(QuantityName(l.stripEntry())) + ", 0 below, 1 above; a click tilts the maps"
+	return l.words.Say("mean %s, 0 below, 1 above; a click tilts the maps", l.words.Within(l.words.Say(QuantityName(l.stripEntry()))))
 }

@@ -2,12 +2,12 @@ package model
 
 import (
 	"context"
-	"fmt"
 	"image"
 	"math"
 	"slices"
 
 	"pavilight/app/picture"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/trace"
 )
@@ -40,7 +40,7 @@ func (l *Look) StripRange() facets.Angle { return l.reach }
 // SetStripRange lets the strip rock as far to either side, and traces it anew.
 func (l *Look) SetStripRange(reach facets.Angle) error {
 	if deg := reach.Degrees(); !(deg >= leastStripRange && deg <= mostStripRange) {
-		return fmt.Errorf("the strip rocks from %v° to %v° to either side", leastStripRange, mostStripRange)
+		return words.Errorf("the strip rocks from %v° to %v° to either side", leastStripRange, mostStripRange)
 	}
 	if reach != l.reach {
 		l.reach, l.latest.reach = reach, reach

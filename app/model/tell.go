@@ -2,8 +2,6 @@ package model
 
 import (
 	"context"
-	"errors"
-	"fmt"
 	"image"
 	"io"
 	"path/filepath"
@@ -17,6 +15,7 @@ import (
 	"pavilight/app/disk"
 	"pavilight/app/drawing"
 	"pavilight/app/report"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/trace"
@@ -59,6 +58,7 @@ type Tell struct {
 
 	do       func(func())
 	onChange func()
+	words    *words.Words
 	material findMaterial
 	subject  tellSubject
 	traced   tellTraced
@@ -107,6 +107,9 @@ func NewTell(do func(func()), onChange func(), material func(facets.MaterialRef)
 	t.painter = painter{do: do, open: &t.open}
 	return t
 }
+
+// SetWords has what is told beside the report said in a language; before, it is English.
+func (t *Tell) SetWords(w *words.Words) { t.words = w }
 
 // mostTold is how many surroundings find room on a page.
 const mostTold = 4
@@ -260,11 +263,12 @@ func (w TellWish) cover(program string) (*report.Cover, error) {
 	c := &report.Cover{Language: w.Language, Colleague: w.Colleague, Author: w.Author, Client: w.Client, Notes: w.Notes,
 		Date: time.Date(now.Year(), now.Month(), now.Day(), 0, 0, 0, 0, time.UTC), Program: program}
 	for _, text := range []struct {
-		name, words string
-		most        int
+		name words.Key
+		said string
+		most int
 	}{{"your name", w.Author, mostNames}, {"the client's name", w.Client, mostNames}, {"the notes", w.Notes, mostNotes}} {
-		if n := utf8.RuneCountInString(text.words); n > text.most {
-			return nil, fmt.Errorf("%s: %d letters are too many; use at most %d", text.name, n, text.most)
+		if n := utf8.RuneCountInString(text.said); n > text.most {
+			return nil, words.Errorf("%s: %d letters are too many; use at most %d", text.name, n, text.most)
 		}
 	}
 	var err error
@@ -368,10 +372,10 @@ func (t *Tell) Ready() bool {
 func (t *Tell) Notes() []string {
 	var notes []string
 	if names := report.Materials(t.all); len(names) > 1 {
-		notes = append(notes, "The stones are of different materials: "+strings.Join(names, ", ")+".")
+		notes = append(notes, t.words.Say("The stones are of different materials: %s.", strings.Join(names, ", ")))
 	}
 	if t.Wish.Measured == "" && len(t.pages) > 0 {
-		notes = append(notes, "The report says that measuring errors are not included.")
+		notes = append(notes, t.words.Say("The report says that measuring errors are not included."))
 	}
 	return notes
 }
@@ -411,7 +415,7 @@ func writeReport(path string, all []*report.Findings, wish TellWish, program str
 	ending := strings.ToLower(filepath.Ext(path))
 	switch {
 	case one[ending] == nil:
-		return errors.New("a report is written as .pdf or as .html; give the file one of these endings")
+		return words.Errorf("a report is written as .pdf or as .html; give the file one of these endings")
 	case len(all) == 1:
 		return disk.Replace(path, func(w io.Writer) error { return one[ending](w, all[0], cover) })
 	}

@@ -1,8 +1,6 @@
 package model
 
 import (
-	"errors"
-	"fmt"
 	"math"
 	"slices"
 	"strconv"
@@ -27,14 +25,14 @@ type TierForm struct {
 	Note      string
 }
 
-// FormOf returns the form of a tier.
-func FormOf(t *facets.Tier) TierForm {
+// FormOf returns the form of a tier, numbers written as the language does.
+func FormOf(w *words.Words, t *facets.Tier) TierForm {
 	f := TierForm{
-		Name: t.Name, Side: t.Side, Index: indexWords(t.Index), Mirror: t.Mirror,
+		Name: t.Name, Side: t.Side, Index: indexWords(w, t.Index), Mirror: t.Mirror,
 		Rule: t.Stop.Rule, With: t.Stop.With, Temporary: t.Temporary, Note: t.Note,
 	}
 	if t.HasAngle {
-		f.Angle = FormatAngle(t.Angle)
+		f.Angle = w.Decimal(FormatAngle(t.Angle))
 	}
 	if t.Fold > 1 {
 		f.Fold = strconv.Itoa(t.Fold)
@@ -42,41 +40,45 @@ func FormOf(t *facets.Tier) TierForm {
 	switch t.Stop.Rule {
 	case facets.NoStop:
 	case facets.StopMeet:
-		f.Stop = cornerWords(t.Stop.Corners)
+		f.Stop = cornerWords(w, t.Stop.Corners)
 	default:
-		f.Stop = strconv.FormatFloat(t.Stop.Value, 'f', -1, 64)
+		f.Stop = w.Decimal(strconv.FormatFloat(t.Stop.Value, 'f', -1, 64))
 	}
 	return f
 }
 
 // cornerWords writes corners: marks apart by spaces, corners by semicolons.
-func cornerWords(corners [][]facets.Mark) string {
-	words := make([]string, len(corners))
+func cornerWords(w *words.Words, corners [][]facets.Mark) string {
+	all := make([]string, len(corners))
 	for i, marks := range corners {
 		each := make([]string, len(marks))
 		for j, m := range marks {
-			each[j] = m.String()
+			name, tooth, has := strings.Cut(m.String(), "@")
+			if has {
+				tooth = "@" + w.Decimal(tooth)
+			}
+			each[j] = name + tooth
 		}
-		words[i] = strings.Join(each, " ")
+		all[i] = strings.Join(each, " ")
 	}
-	return strings.Join(words, "; ")
+	return strings.Join(all, "; ")
 }
 
 // fill writes the form into a tier. The error says what is wrong in which field.
 func (f TierForm) fill(t *facets.Tier) error {
 	name := strings.TrimSpace(f.Name)
 	if name == "" || strings.ContainsAny(name, "@;\" \t\n") || name == facets.AxisName {
-		return errors.New("name: give the tier a short name without spaces, such as P1")
+		return words.Errorf("name: give the tier a short name without spaces, such as P1")
 	}
 	t.Name, t.Side, t.Mirror, t.Temporary, t.Note = name, f.Side, f.Mirror, f.Temporary, strings.TrimSpace(f.Note)
 	t.HasAngle, t.Angle = false, 0
 	if strings.TrimSpace(f.Angle) != "" {
 		a, err := ParseAngle(f.Angle)
 		if err != nil {
-			return fmt.Errorf("angle: %w", err)
+			return words.Errorf("angle: %v", err)
 		}
 		if a > 90*facets.Degree {
-			return errors.New("angle: a facet's angle goes from 0° for the table to 90° for the girdle")
+			return words.Errorf("angle: a facet's angle goes from 0° for the table to 90° for the girdle")
 		}
 		t.HasAngle, t.Angle = true, a
 	}
@@ -84,7 +86,7 @@ func (f TierForm) fill(t *facets.Tier) error {
 	for _, word := range strings.Fields(f.Index) {
 		tooth, err := ParseNumber(word, "")
 		if err != nil {
-			return fmt.Errorf("index: %w", err)
+			return words.Errorf("index: %v", err)
 		}
 		t.Index = append(t.Index, tooth)
 	}
@@ -92,7 +94,7 @@ func (f TierForm) fill(t *facets.Tier) error {
 	if text := strings.TrimSpace(f.Fold); text != "" {
 		n, err := strconv.Atoi(text)
 		if err != nil || n < 1 || n > facets.MaxPlanFacets {
-			return errors.New("repeated: write how often round the gear, as a whole number")
+			return words.Errorf("repeated: write how often round the gear, as a whole number")
 		}
 		t.Fold = n
 	}
@@ -103,7 +105,7 @@ func (f TierForm) fillStop(s *facets.Stop) error {
 	*s = facets.Stop{Rule: f.Rule, Line: s.Line}
 	switch f.Rule {
 	case facets.NoStop:
-		return errors.New("cut until: choose when a facet is deep enough")
+		return words.Errorf("cut until: choose when a facet is deep enough")
 	case facets.StopMeet:
 		corners, err := parseCorners(f.Stop)
 		s.Corners = corners
@@ -111,12 +113,12 @@ func (f TierForm) fillStop(s *facets.Stop) error {
 	case facets.StopEdge:
 		s.With = strings.TrimSpace(f.With)
 		if s.With == "" {
-			return errors.New("cut until: name the tier that the edge is made with")
+			return words.Errorf("cut until: name the tier that the edge is made with")
 		}
 	}
 	v, err := parseSigned(f.Stop)
 	if err != nil {
-		return fmt.Errorf("cut until: %w", err)
+		return words.Errorf("cut until: %v", err)
 	}
 	s.Value = v
 	return nil
@@ -145,12 +147,12 @@ func parseCorners(text string) ([][]facets.Mark, error) {
 			if has {
 				v, err := ParseNumber(tooth, "")
 				if err != nil {
-					return nil, fmt.Errorf("cut until: %q names no tooth; write it as P1@6", word)
+					return nil, words.Errorf("cut until: %q names no tooth; write it as P1@6", word)
 				}
 				m.Index = v
 			}
 			if name == "" {
-				return nil, fmt.Errorf("cut until: %q names no tier; write it as P1@6", word)
+				return nil, words.Errorf("cut until: %q names no tier; write it as P1@6", word)
 			}
 			marks = append(marks, m)
 		}
@@ -159,7 +161,7 @@ func parseCorners(text string) ([][]facets.Mark, error) {
 		}
 	}
 	if len(corners) == 0 {
-		return nil, errors.New("cut until: name the facets that meet there, such as P1@6 P1@18 G1@12")
+		return nil, words.Errorf("cut until: name the facets that meet there, such as P1@6 P1@18 G1@12")
 	}
 	return corners, nil
 }
@@ -202,7 +204,7 @@ func (b *Bench) RemoveTier(number int) error {
 		}
 		p.Tiers = slices.Delete(p.Tiers, number, number+1)
 		if len(p.Tiers) == 0 {
-			return errors.New("a plan needs a tier")
+			return words.Errorf("a plan needs a tier")
 		}
 		return nil
 	})
@@ -239,7 +241,7 @@ func (b *Bench) change(name words.Text, do func(*facets.Plan) error) error {
 func alone(p *facets.Plan, number int) error {
 	for i := range p.Tiers {
 		if i != number && p.Tiers[i].Name == p.Tiers[number].Name {
-			return fmt.Errorf("name: there is a tier %q already; give this one another name", p.Tiers[i].Name)
+			return words.Errorf("name: there is a tier %q already; give this one another name", p.Tiers[i].Name)
 		}
 	}
 	return nil
@@ -266,7 +268,7 @@ func rename(p *facets.Plan, before, after string) {
 }
 
 // RuleWords says in a few words when a facet is deep enough.
-func RuleWords(r facets.Rule) string {
+func RuleWords(r facets.Rule) words.Key {
 	switch r {
 	case facets.StopDistance:
 		return "its plane is this far from the origin"
@@ -298,7 +300,7 @@ func Rules() []facets.Rule {
 func (b *Bench) NewForm(after int) TierForm {
 	plan := b.Doc.Plan()
 	like := plan.Tiers[after]
-	f := FormOf(&like)
+	f := FormOf(b.words, &like)
 	f.Note, f.Temporary = "", false
 	for n := 1; ; n++ {
 		f.Name = strings.TrimRight(like.Name, "0123456789") + strconv.Itoa(n)
@@ -307,7 +309,7 @@ func (b *Bench) NewForm(after int) TierForm {
 		}
 	}
 	if angle := foundAngle(b.Look.Subject.Stone, like.Name); f.Angle == "" && !math.IsNaN(float64(angle)) {
-		f.Angle = FormatAngle(angle)
+		f.Angle = b.words.Decimal(FormatAngle(angle))
 	}
 	return f
 }

@@ -21,14 +21,14 @@ func TestFormsHoldEveryTier(t *testing.T) {
 		for i := range plan.Tiers {
 			var back facets.Tier
 			want := plan.Tiers[i]
-			if err := FormOf(&want).fill(&back); err != nil {
+			if err := FormOf(nil, &want).fill(&back); err != nil {
 				t.Errorf("%s, tier %s: %v", name, want.Name, err)
 				continue
 			}
 			same := back.Name == want.Name && back.Side == want.Side && back.HasAngle == want.HasAngle &&
 				back.Mirror == want.Mirror && max(1, back.Fold) == max(1, want.Fold) && back.Note == strings.TrimSpace(want.Note) &&
 				back.Stop.Rule == want.Stop.Rule && back.Stop.Value == want.Stop.Value && back.Stop.With == want.Stop.With &&
-				reflect.DeepEqual(back.Stop.Corners, want.Stop.Corners) && indexWords(back.Index) == indexWords(want.Index)
+				reflect.DeepEqual(back.Stop.Corners, want.Stop.Corners) && indexWords(nil, back.Index) == indexWords(nil, want.Index)
 			if !same {
 				t.Errorf("%s, tier %s came back as %+v, want %+v", name, want.Name, back, want)
 			}
@@ -106,7 +106,7 @@ func TestTiersAreAddedMovedRenamedAndRemoved(t *testing.T) {
 				turned = i
 			}
 		}
-		form := FormOf(&p.Doc.Plan().Tiers[0])
+		form := FormOf(nil, &p.Doc.Plan().Tiers[0])
 		form.Name = "Main"
 		must(p.EditTier(0, form))
 		for _, tier := range p.Doc.Plan().Tiers {

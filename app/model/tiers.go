@@ -1,10 +1,11 @@
 package model
 
 import (
-	"fmt"
 	"math"
 	"strings"
+	"unicode"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/trace"
@@ -37,14 +38,14 @@ type tierList struct {
 
 // rows returns the plan's tiers in cutting order. stone, which may be nil, tells
 // the angles that the solver found.
-func (l *tierList) rows(plan *facets.Plan, stone *facets.Stone, ticks []Tick) []TierRow {
+func (l *tierList) rows(w *words.Words, plan *facets.Plan, stone *facets.Stone, ticks []Tick) []TierRow {
 	if l.ranges == nil {
 		l.ranges = map[string][2]facets.Angle{}
 	}
 	rows := make([]TierRow, len(plan.Tiers))
 	for i := range plan.Tiers {
 		t := &plan.Tiers[i]
-		row := TierRow{Number: i, Name: t.Name, Side: t.Side, Detail: detail(t, plan.Gear), Angle: t.Angle, Own: t.HasAngle}
+		row := TierRow{Number: i, Name: t.Name, Side: t.Side, Detail: detail(w, t, plan.Gear), Angle: t.Angle, Own: t.HasAngle}
 		if !t.HasAngle {
 			row.Angle = foundAngle(stone, t.Name)
 		}
@@ -113,48 +114,45 @@ func foundAngle(stone *facets.Stone, tier string) facets.Angle {
 }
 
 // detail says how many facets a tier has and when each is deep enough.
-func detail(t *facets.Tier, gear int) string {
+func detail(w *words.Words, t *facets.Tier, gear int) string {
 	n := len(t.Indices(gear))
-	var b strings.Builder
-	if n == 1 {
-		b.WriteString("1 facet")
-	} else {
-		fmt.Fprintf(&b, "%d facets", n)
-	}
+	count := w.Count(n, "%d facet", "%d facets", n)
+	parts := []string{count}
+	add := func(k words.Key, args ...any) { parts = append(parts, w.Say(k, args...)) }
 	s := t.Stop
 	switch s.Rule {
 	case facets.StopDistance:
-		fmt.Fprintf(&b, ", %.4g from the origin", s.Value)
+		add("%.4g from the origin", s.Value)
 	case facets.StopCentre:
-		fmt.Fprintf(&b, ", to %.4g on the axis", s.Value)
+		add("to %.4g on the axis", s.Value)
 	case facets.StopMeet:
 		corners := make([]string, len(s.Corners))
 		for i, marks := range s.Corners {
-			words := make([]string, len(marks))
+			names := make([]string, len(marks))
 			for j, m := range marks {
-				words[j] = m.String()
+				names[j] = m.String()
 			}
-			corners[i] = strings.Join(words, " ")
+			corners[i] = strings.Join(names, " ")
 		}
-		fmt.Fprintf(&b, ", meet %s", strings.Join(corners, " and "))
+		add("meet %s", strings.Join(corners, w.Say(" and ")))
 	case facets.StopLevel:
-		fmt.Fprintf(&b, ", edge at the girdle %.4g", s.Value)
+		add("edge at the girdle %.4g", s.Value)
 	case facets.StopEdge:
-		fmt.Fprintf(&b, ", edge with %s at %.4g", s.With, s.Value)
+		add("edge with %s at %.4g", s.With, s.Value)
 	case facets.StopGirdle:
-		fmt.Fprintf(&b, ", leaving %.4g of girdle", s.Value)
+		add("leaving %.4g of girdle", s.Value)
 	case facets.StopTable, facets.StopCulet:
-		fmt.Fprintf(&b, ", %.4g of the width", s.Value)
+		add("%.4g of the width", s.Value)
 	}
 	if t.Temporary {
-		b.WriteString(", temporary")
+		add("temporary")
 	}
-	return b.String()
+	return strings.Join(parts, ", ")
 }
 
 // criticalTicks returns the critical angles of a material in the surroundings, at
 // the sodium D line; a medium that is not the thinner side has none.
-func criticalTicks(material *gems.Material, around []Around) []Tick {
+func criticalTicks(w *words.Words, material *gems.Material, around []Around) []Tick {
 	var ticks []Tick
 	if material == nil {
 		return nil
@@ -170,16 +168,16 @@ func criticalTicks(material *gems.Material, around []Around) []Tick {
 			continue
 		}
 		if angle, ok := trace.CriticalAngle(n, outside); ok {
-			ticks = append(ticks, Tick{Letter: letterOf(m), Name: m.Name, Angle: angle})
+			ticks = append(ticks, Tick{Letter: letterOf(w, m), Name: MaterialName(w, m), Angle: angle})
 		}
 	}
 	return ticks
 }
 
 // letterOf returns the letter by which a surrounding's tick is known.
-func letterOf(m *gems.Material) string {
-	for _, r := range m.Key {
-		return string(r)
+func letterOf(w *words.Words, m *gems.Material) string {
+	for _, r := range shortName(w, m) {
+		return string(unicode.ToLower(r))
 	}
 	return "?"
 }

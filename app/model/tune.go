@@ -3,7 +3,6 @@ package model
 import (
 	"context"
 	"errors"
-	"fmt"
 	"image"
 	"io/fs"
 	"path/filepath"
@@ -15,6 +14,7 @@ import (
 
 	"pavilight/app/disk"
 	"pavilight/app/picture"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/trace"
@@ -38,14 +38,29 @@ func TuneTasks() []TuneTask {
 	return []TuneTask{FindBetter, ShowField, TellErrors, TradeTwo, MoveMaterial}
 }
 
-// String returns the question's name on the screen.
-func (t TuneTask) String() string {
-	return [...]string{"Find better angles", "Show the goal over two", "What errors cost", "Trade two goals off", "Another material"}[t]
+// Name returns the question's name on the screen.
+func (t TuneTask) Name() words.Key {
+	return [...]words.Key{"Find better angles", "Show the goal over two", "What errors cost", "Trade two goals off", "Another material"}[t]
 }
 
 // doing says what a run is at before it tells more.
-func (t TuneTask) doing() string {
-	return [...]string{"searching", "seeing the field", "cutting with errors", "searching", "moving"}[t]
+func (t TuneTask) doing() words.Key {
+	return [...]words.Key{"searching", "seeing the field", "cutting with errors", "searching", "moving"}[t]
+}
+
+// searchPhases are what a search tells that it is at.
+func searchPhases() []words.Key {
+	return []words.Key{"looking round", "climbing", "walking on the steps", "settling on the steps", "comparing the last few",
+		"tracing the winner anew", "done"}
+}
+
+// MeasureName returns what people call a measure, within a sentence.
+func MeasureName(m tune.Measure) words.Key {
+	return [...]words.Key{
+		tune.LightReturn: "light return", tune.Leakage: "leakage", tune.HeadShade: "darkened by the head",
+		tune.LeakyArea: "leaky area", tune.WindowedArea: "windowed area", tune.Weight: "weight", tune.Luminance: "luminance",
+		tune.DarkArea: "dark area", tune.Contrast: "contrast", tune.Fire: "fire", tune.Sparkle: "sparkle",
+	}[m]
 }
 
 // TuneChoice is one thing that may vary, and whether it shall.
@@ -97,6 +112,7 @@ type Tune struct {
 
 	do       func(func())
 	onChange func()
+	words    *words.Words
 	plan     *facets.Plan
 	material *gems.Material
 	head     facets.Angle
@@ -126,6 +142,9 @@ func NewTune(do func(func()), onChange func()) *Tune {
 	t.painter = painter{do: do, open: &t.painted}
 	return t
 }
+
+// SetWords has the answers said in a language; before, it is English.
+func (t *Tune) SetWords(w *words.Words) { t.words = w }
 
 // SetPlan takes another state of the plan, or of how it is looked at. Choices and limits
 // of tiers that are still there stay as they were; another plan has its mains chosen.
@@ -203,7 +222,7 @@ func (t *Tune) SetLimits(i int, low, high float64) error {
 	v := t.Choices[i].Variable
 	least, most := tune.Widest(tune.PlanPattern{Plan: t.plan}, v)
 	if !(low >= least && high <= most && low <= high) {
-		return fmt.Errorf("%s: use limits from %g to %g %s, the smaller first", v.Name, least, most, v.Unit)
+		return words.Errorf("%s: use limits from %g to %g %s, the smaller first", v.Name, least, most, unitName(v))
 	}
 	t.Choices[i].Low, t.Choices[i].High = low, high
 	t.onChange()
@@ -219,7 +238,7 @@ func (t *Tune) variables(p tune.Pattern) ([]tune.Variable, error) {
 		}
 	}
 	if len(names) == 0 {
-		return nil, errors.New("nothing is chosen that may vary; choose at least one tier")
+		return nil, words.Errorf("nothing is chosen that may vary; choose at least one tier")
 	}
 	vs, err := tune.Choose(p, names...)
 	for i := range vs {
@@ -238,7 +257,7 @@ func (t *Tune) variables(p tune.Pattern) ([]tune.Variable, error) {
 // problem returns the question that the room asks.
 func (t *Tune) problem() (*tune.Problem, error) {
 	if t.plan == nil || t.material == nil {
-		return nil, errors.New("open a plan that says what it is made of")
+		return nil, words.Errorf("open a plan that says what it is made of")
 	}
 	p := &tune.Problem{Pattern: tune.PlanPattern{Plan: t.plan}, Material: t.material, Limits: t.Limits, Head: t.head, Seed: 1,
 		Workers: max(1, runtime.GOMAXPROCS(0)-1)} // the window stays alive
@@ -250,7 +269,7 @@ func (t *Tune) problem() (*tune.Problem, error) {
 		}
 	}
 	if len(around) == 0 {
-		return p, errors.New("no surrounding is chosen; say in what the stone is seen")
+		return p, words.Errorf("no surrounding is chosen; say in what the stone is seen")
 	}
 	for _, s := range surroundings(around) {
 		for _, tilt := range t.Tilts {
@@ -276,13 +295,13 @@ func (t *Tune) Begin() {
 	t.painter.forget()
 	p, err := t.problem()
 	if err == nil && t.Task == ShowField && len(p.Variables) != 2 {
-		err = fmt.Errorf("a field lies over two things that vary, and %d are chosen", len(p.Variables))
+		err = words.Errorf("a field lies over two things that vary, and %d are chosen", len(p.Variables))
 	}
 	if err == nil && t.Task == TradeTwo && len(p.Goal.Aims) != 2 {
-		err = errors.New("a trade-off is between two goals; name the second one")
+		err = words.Errorf("a trade-off is between two goals; name the second one")
 	}
 	if err == nil && t.Task == MoveMaterial && t.To == nil {
-		err = errors.New("choose the material to move to")
+		err = words.Errorf("choose the material to move to")
 	}
 	if err != nil {
 		t.Trouble = err
@@ -292,7 +311,7 @@ func (t *Tune) Begin() {
 	ctx, cancel := context.WithCancel(context.Background())
 	t.number++
 	t.variablesUsed, t.aimsUsed, t.limitsUsed, t.planUsed = p.Variables, p.Goal.Aims, p.Limits, t.plan
-	t.Running, t.Phase, t.Done, t.cancel, t.finished = true, t.Task.doing(), 0, cancel, make(chan struct{})
+	t.Running, t.Phase, t.Done, t.cancel, t.finished = true, t.words.Say(t.Task.doing()), 0, cancel, make(chan struct{})
 	r := &tuneRun{tune: t, number: t.number, problem: p, task: t.Task, to: t.To, machine: t.Machine, draws: t.Draws, cells: t.Cells, keep: t.KeepFile,
 		plan: t.plan, choose: t.frozen(), pace: newPace()}
 	finished := t.finished
@@ -380,7 +399,7 @@ func (r *tuneRun) progress(p tune.Progress) {
 		return
 	}
 	r.hand(func(t *Tune) {
-		t.Phase, t.Done = p.Phase, p.Done
+		t.Phase, t.Done = t.words.Among(searchPhases(), p.Phase), p.Done
 		if len(p.Start.Values) > 0 {
 			t.Start = &p.Start
 		}
@@ -405,7 +424,7 @@ func (r *tuneRun) work(ctx context.Context) error {
 		memory = &tune.Memory{Path: r.keep, Purpose: text.String()}
 		lock, err := disk.LockFile(r.keep)
 		if errors.Is(err, disk.ErrHeld) {
-			return fmt.Errorf("another search is writing to the record %s; wait for its end, or keep another one", filepath.Base(r.keep))
+			return words.Errorf("another search is writing to the record %s; wait for its end, or keep another one", filepath.Base(r.keep))
 		}
 		if err != nil {
 			return err
@@ -420,7 +439,7 @@ func recordInWords(err error) error {
 	var memory *tune.MemoryError
 	var system *fs.PathError
 	if errors.As(err, &memory) && errors.As(memory.Err, &system) {
-		return fmt.Errorf("not all that was seen is in the record: %w", disk.InWords(memory.Path, system))
+		return words.Errorf("not all that was seen is in the record: %v", disk.InWords(memory.Path, system))
 	}
 	return err
 }

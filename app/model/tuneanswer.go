@@ -1,11 +1,11 @@
 package model
 
 import (
-	"fmt"
 	"math"
 	"strconv"
 	"strings"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/trace/tune"
 )
@@ -60,25 +60,33 @@ func onStep(v tune.Variable, x float64) float64 {
 	return math.Round(math.Round(x/v.Step)*v.Step*1e9) / 1e9
 }
 
-// valueWords writes a value of a variable.
-func valueWords(v tune.Variable, x float64) string {
+// unitName returns the unit of a variable; a plain number has none.
+func unitName(v tune.Variable) words.Key {
 	if v.Unit == "degrees" {
-		return strconv.FormatFloat(x, 'f', 2, 64) + "°"
+		return "degrees"
 	}
-	return strconv.FormatFloat(x, 'f', 3, 64)
+	return words.Key(strings.ReplaceAll(v.Unit, "%", "%%")) // a sign, in any language
+}
+
+// valueWords writes a value of a variable.
+func (t *Tune) valueWords(v tune.Variable, x float64) string {
+	if v.Unit == "degrees" {
+		return t.words.Say("%.2f°", x)
+	}
+	return t.words.Say("%.3f", x)
 }
 
 // changeWords writes a change of a variable in a cutter's terms.
-func changeWords(v tune.Variable, by float64) string {
+func (t *Tune) changeWords(v tune.Variable, by float64) string {
 	switch {
 	case math.Abs(by) < 5e-4:
-		return "as it is"
+		return t.words.Say("as it is")
 	case v.Unit == "degrees" && by > 0:
-		return valueWords(v, by) + " steeper"
+		return t.words.Say("%s steeper", t.valueWords(v, by))
 	case v.Unit == "degrees":
-		return valueWords(v, -by) + " flatter"
+		return t.words.Say("%s flatter", t.valueWords(v, -by))
 	}
-	return fmt.Sprintf("%+.3f", by)
+	return t.words.Say("%+.3f", by)
 }
 
 // Changes tells a cutter what the answer changes: a name and what becomes of it.
@@ -98,7 +106,7 @@ func (t *Tune) changes(vs []tune.Variable, values []float64) (lines [][2]string)
 		if i < len(values) {
 			x := onStep(v, values[i])
 			lines = append(lines, [2]string{v.Name,
-				fmt.Sprintf("%s to %s, %s", valueWords(v, v.Now), valueWords(v, x), changeWords(v, x-v.Now))})
+				t.words.Say("%s to %s, %s", t.valueWords(v, v.Now), t.valueWords(v, x), t.changeWords(v, x-v.Now))})
 		}
 	}
 	return lines
@@ -106,12 +114,13 @@ func (t *Tune) changes(vs []tune.Variable, values []float64) (lines [][2]string)
 
 // withError writes a number with its standard error; it shows no digits that the error
 // makes worthless.
-func withError(v, e float64) string {
+func (t *Tune) withError(v, e float64) string {
 	decimals := 4
 	if e > 0 {
 		decimals = max(1, min(5, 1-int(math.Floor(math.Log10(e)))))
 	}
-	return fmt.Sprintf("%.*f ± %.*f", decimals, v, decimals, e)
+	write := func(x float64) string { return t.words.Decimal(strconv.FormatFloat(x, 'f', decimals, 64)) }
+	return write(v) + " ± " + write(e)
 }
 
 // TrialWords tells what a stone measures, a line an aim; empty where it was not seen.
@@ -125,7 +134,7 @@ func (t *Tune) TrialWords(trial *tune.Trial) []string {
 	var lines []string
 	for i, a := range t.aimsUsed {
 		if i < len(trial.Measures) {
-			line := a.Measure.Name() + " " + withError(trial.Measures[i], trial.MeasureErrors[i])
+			line := t.words.Say(MeasureName(a.Measure)) + " " + t.withError(trial.Measures[i], trial.MeasureErrors[i])
 			if a.Measure == tune.Weight {
 				line += " ct"
 			}
@@ -147,9 +156,9 @@ func (t *Tune) Verdict() []string {
 	case t.Tolerance != nil:
 		return t.toleranceWords()
 	case t.Front != nil && len(t.Front.Points) > 0:
-		lines := []string{fmt.Sprintf("%d stones of which none is better in both than another. Click one, or use the arrow keys.", len(t.Front.Points))}
+		lines := []string{t.words.Say("%d stones of which none is better in both than another. Click one, or use the arrow keys.", len(t.Front.Points))}
 		if t.Pick != nil {
-			lines = append(lines, "Picked: "+strings.Join(t.TrialWords(t.Pick), ", ")+".")
+			lines = append(lines, t.words.Say("Picked: %s.", strings.Join(t.TrialWords(t.Pick), ", ")))
 		}
 		return lines
 	case t.Field != nil:
@@ -163,58 +172,58 @@ func (t *Tune) Verdict() []string {
 func (t *Tune) outcomeWords(o *tune.Outcome, vs []tune.Variable) (lines []string) {
 	switch {
 	case !o.Best.Fit:
-		lines = append(lines, "No stone that keeps the limits was found.")
+		lines = append(lines, t.words.Say("No stone that keeps the limits was found."))
 	case !o.Start.Seen:
-		lines = append(lines, "As it stands there is no such stone: "+strings.Join(o.Start.Words, "; ")+".")
+		lines = append(lines, t.words.Say("As it stands there is no such stone: %s.", strings.Join(o.Start.Words, "; ")))
 	case !o.Start.Fit:
-		lines = append(lines, "As it stands the stone breaks limits: "+strings.Join(o.Start.Words, "; ")+".")
+		lines = append(lines, t.words.Say("As it stands the stone breaks limits: %s.", strings.Join(o.Start.Words, "; ")))
 	case o.Better:
-		lines = append(lines, fmt.Sprintf("Better by %s of the goal: more than chance explains.", withError(o.Gain, o.GainError)))
+		lines = append(lines, t.words.Say("Better by %s of the goal: more than chance explains.", t.withError(o.Gain, o.GainError)))
 	case t.Stopped:
-		lines = append(lines, "Stopped before the best was traced anew: how much better it is stays open.")
+		lines = append(lines, t.words.Say("Stopped before the best was traced anew: how much better it is stays open."))
 	default:
-		lines = append(lines, "Nothing better was found than the stone as it stands, beyond what chance explains.")
+		lines = append(lines, t.words.Say("Nothing better was found than the stone as it stands, beyond what chance explains."))
 	}
 	for i, v := range vs {
 		if x := o.Best.Values[i]; v.High > v.Low && (x < v.Low+v.Step*0.999 || x > v.High-v.Step*0.999) {
-			lines = append(lines, fmt.Sprintf("%s stands at its limit: wider ones may do better.", v.Name))
+			lines = append(lines, t.words.Say("%s stands at its limit: wider ones may do better.", v.Name))
 		}
 	}
 	for i, near := range o.Nearby {
 		v := vs[i/2]
-		by := changeWords(v, near.Values[i/2]-o.Best.Values[i/2])
+		by := t.changeWords(v, near.Values[i/2]-o.Best.Values[i/2])
 		switch loss := o.Best.Score - near.Score; {
 		case !near.Seen:
-			lines = append(lines, fmt.Sprintf("Careful: with %s %s there is no such stone.", v.Name, by))
+			lines = append(lines, t.words.Say("Careful: with %s %s there is no such stone.", v.Name, by))
 		case loss > nearLoss*math.Abs(o.Best.Score):
-			lines = append(lines, fmt.Sprintf("Careful: with %s %s it loses %.3f. The best stands at an edge; rocking the stone, too, may find a calmer place.", v.Name, by, loss))
+			lines = append(lines, t.words.Say("Careful: with %s %s it loses %.3f. The best stands at an edge; rocking the stone, too, may find a calmer place.", v.Name, by, loss))
 		}
 	}
-	return append(lines, fmt.Sprintf("%d stones were looked at. Both shown are traced anew, with rays that the search has not seen.", o.Tried))
+	return append(lines, t.words.Say("%d stones were looked at. Both shown are traced anew, with rays that the search has not seen.", o.Tried))
 }
 
 func (t *Tune) fieldWords() (lines []string) {
 	if t.Pick != nil {
 		if !t.Pick.Fit {
-			return []string{"There is no stone that fits here: " + strings.Join(t.Pick.Words, "; ") + "."}
+			return []string{t.words.Say("There is no stone that fits here: %s.", strings.Join(t.Pick.Words, "; "))}
 		}
-		lines = append(lines, "Picked: "+strings.Join(t.TrialWords(t.Pick), ", ")+".")
+		lines = append(lines, t.words.Say("Picked: %s.", strings.Join(t.TrialWords(t.Pick), ", ")))
 	} else if best, ok := t.Field.Best(); ok {
-		lines = append(lines, "Best of the field: "+strings.Join(t.TrialWords(&t.Field.Trials[best]), ", ")+".")
+		lines = append(lines, t.words.Say("Best of the field: %s.", strings.Join(t.TrialWords(&t.Field.Trials[best]), ", ")))
 	}
 	if t.Field.Now.Seen {
-		lines = append(lines, "As it stands: "+strings.Join(t.TrialWords(&t.Field.Now), ", ")+".")
+		lines = append(lines, t.words.Say("As it stands: %s.", strings.Join(t.TrialWords(&t.Field.Now), ", ")))
 	}
-	return append(lines, "Click a place, or move with the arrow keys, to pick it.")
+	return append(lines, t.words.Say("Click a place, or move with the arrow keys, to pick it."))
 }
 
 func (t *Tune) toleranceWords() []string {
 	o := t.Tolerance
 	lines := []string{
-		fmt.Sprintf("%d stones were cut with errors (%s).", len(o.Draws), tune.UsualMachineSource),
-		fmt.Sprintf("Light return %.4f without errors; with them %.4f on average, and 90 stones of 100 between %.4f and %.4f.",
+		t.words.Say("%d stones were cut with errors (%s).", len(o.Draws), MachineSource),
+		t.words.Say("Light return %.4f without errors; with them %.4f on average, and 90 stones of 100 between %.4f and %.4f.",
 			o.Return.Plan, o.Return.Mean, o.Return.Low, o.Return.High),
-		fmt.Sprintf("Corners that should meet miss by up to %.3f mm in half of the stones, by up to %.3f mm in 95 of 100.",
+		t.words.Say("Corners that should meet miss by up to %.3f mm in half of the stones, by up to %.3f mm in 95 of 100.",
 			o.GapMM.Median, o.GapMM.High),
 	}
 	for i, c := range o.Causes {
@@ -222,19 +231,19 @@ func (t *Tune) toleranceWords() []string {
 		if i == most || c.Share < 0.01 {
 			break
 		}
-		what := c.What
+		what := t.words.Among(causes(), c.What)
 		if c.Tier != "" {
-			what += " of " + c.Tier
+			what = t.words.Say("%s of %s", what, c.Tier)
 		}
-		lines = append(lines, fmt.Sprintf("%s makes %.0f %% of the differences in light return.", strings.ToUpper(what[:1])+what[1:], 100*c.Share))
+		lines = append(lines, t.words.Say("%s makes %.0f %% of the differences in light return.", words.Upper(what), 100*c.Share))
 	}
 	switch {
 	case !o.Complete:
-		lines = append(lines, "Stopped before the end.")
+		lines = append(lines, t.words.Say("Stopped before the end."))
 	case o.Needed == 0:
-		lines = append(lines, fmt.Sprintf("Errors of no size keep 95 stones of 100 within %.3f of the light return.", o.Loss))
+		lines = append(lines, t.words.Say("Errors of no size keep 95 stones of 100 within %.3f of the light return.", o.Loss))
 	default:
-		lines = append(lines, fmt.Sprintf("With all errors %.2g times as large, 95 stones of 100 lose no more than %.3f: angles to %.2f°.",
+		lines = append(lines, t.words.Say("With all errors %.2g times as large, 95 stones of 100 lose no more than %.3f: angles to %.2f°.",
 			o.Needed, o.Loss, o.Precise.Angle.Degrees()))
 	}
 	return lines
@@ -242,28 +251,47 @@ func (t *Tune) toleranceWords() []string {
 
 func (t *Tune) movedWords() (lines []string) {
 	m := t.Moved
-	name := m.To.Name
+	from, to := MaterialName(t.words, m.From), MaterialName(t.words, m.To)
+	say := t.words.Say
 	for i, a := range []struct {
 		how   string
 		trial *tune.Trial
 	}{
-		{"As it stands, in " + m.From.Name, &m.Original}, {"Unchanged, in " + name, &m.Unchanged},
-		{"By the tangent rule, in " + name, &m.Tangent}, {"By search, in " + name, &m.Found},
+		{say("As it stands, in %s", from), &m.Original}, {say("Unchanged, in %s", to), &m.Unchanged},
+		{say("By the tangent rule, in %s", to), &m.Tangent}, {say("By search, in %s", to), &m.Found},
 	} {
-		words := t.TrialWords(a.trial)
-		if len(words) == 0 {
+		measured := t.TrialWords(a.trial)
+		if len(measured) == 0 {
 			continue
 		}
-		line := a.how + ": " + strings.Join(words, ", ") + "."
+		line := a.how + ": " + strings.Join(measured, ", ") + "."
 		for k, u := range m.Passed[i] {
 			const most = 2
 			if k == most {
-				line += " And more lie under critical angles."
+				line += " " + say("And more lie under critical angles.")
 				break
 			}
-			line += " Careful: " + u.String() + "."
+			line += " " + say("Careful: %s.", t.underWords(u))
 		}
 		lines = append(lines, line)
 	}
 	return lines
+}
+
+// underWords says that a tier lies under a critical angle.
+func (t *Tune) underWords(u tune.Under) string {
+	medium := t.words.Within(shortName(t.words, u.Medium))
+	if u.Critical >= 90*facets.Degree {
+		return t.words.Say("pavilion %s: in %s nothing is totally reflected", u.Tier, medium)
+	}
+	return t.words.Say("pavilion %s at %.2f° lies under the critical angle %.2f° in %s",
+		u.Tier, u.Angle.Degrees(), u.Critical.Degrees(), medium)
+}
+
+// MachineSource says where the errors of the usual machine come from.
+const MachineSource words.Key = "common practice, no source"
+
+// causes are what can go wrong at the lap, as the answer names it.
+func causes() []words.Key {
+	return []words.Key{"dop tilt", "shift", "twist", "angle", "index", "overcut"}
 }

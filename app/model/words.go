@@ -1,17 +1,15 @@
 package model
 
 import (
-	"fmt"
 	"math"
-	"strconv"
-	"strings"
 
-	"pavilight/gems"
+	"pavilight/app/words"
+	"pavilight/facets"
 	"pavilight/trace"
 )
 
 // QuantityName returns what a row of maps or of the ledger is called.
-func QuantityName(q trace.Quantity) string {
+func QuantityName(q trace.Quantity) words.Key {
 	switch q {
 	case trace.Surface:
 		return "Mirrored"
@@ -28,7 +26,7 @@ func QuantityName(q trace.Quantity) string {
 }
 
 // QuantityMeaning says what a quantity is, in a few words.
-func QuantityMeaning(q trace.Quantity) string {
+func QuantityMeaning(q trace.Quantity) words.Key {
 	switch q {
 	case trace.Surface:
 		return "mirrored by the first surface"
@@ -59,30 +57,21 @@ type Heading struct {
 // Heading returns what stands above a column.
 func (l *Look) Heading(column int) Heading {
 	a := l.Around[column]
-	h := Heading{Medium: shortName(a.Medium)}
+	h := Heading{Medium: shortName(l.words, a.Medium)}
 	if a.Dish {
-		h.Medium = "Dish of " + strings.ToLower(h.Medium)
+		h.Medium = l.words.Say("Dish of %s", l.words.Within(h.Medium))
 	}
 	if l.Frame == nil || column >= len(l.Frame.Result.Columns) || l.Frame.Around[column] != a {
 		return h
 	}
 	c := &l.Frame.Result.Columns[column]
-	h.Index = fmt.Sprintf("%.3f", c.IndexMedium)
+	h.Index = l.words.Say("%.3f", c.IndexMedium)
 	if c.HasCritical {
-		h.Critical = fmt.Sprintf("critical %.1f°", c.Critical.Degrees())
+		h.Critical = l.words.Say("critical %.1f°", c.Critical.Degrees())
 	} else {
-		h.Critical = "no critical angle"
+		h.Critical = l.words.Say("no critical angle")
 	}
 	return h
-}
-
-// shortName names a material by its key, which is shorter than its name.
-func shortName(m *gems.Material) string {
-	if m.Key == "" {
-		return m.Name
-	}
-	words := strings.ReplaceAll(m.Key, "-", " ")
-	return strings.ToUpper(words[:1]) + words[1:]
 }
 
 // LedgerRow is one line of the ledger under the maps.
@@ -111,10 +100,10 @@ func (l *Look) Ledger() []LedgerRow {
 	columns := l.Frame.Result.Columns
 	var rows []LedgerRow
 	for _, q := range append(Quantities(), trace.Unresolved) {
-		row := LedgerRow{Name: QuantityName(q), Entry: q, Main: q == trace.Returned || q == trace.Leaked}
+		row := LedgerRow{Name: l.words.Say(QuantityName(q)), Entry: q, Main: q == trace.Returned || q == trace.Leaked}
 		matters := q != trace.Unresolved && q != trace.Absorbed
 		for i := range columns {
-			c := cell(q.Of(columns[i].Ledger), q.Of(columns[i].StandardError))
+			c := l.cell(q.Of(columns[i].Ledger), q.Of(columns[i].StandardError))
 			matters = matters || c.Significant
 			row.Cells = append(row.Cells, c)
 		}
@@ -122,20 +111,20 @@ func (l *Look) Ledger() []LedgerRow {
 			rows = append(rows, row)
 		}
 	}
-	leaky, window := LedgerRow{Name: "Leaky area", Area: true}, LedgerRow{Name: "Window", Area: true}
+	leaky, window := LedgerRow{Name: l.words.Say("Leaky area"), Area: true}, LedgerRow{Name: l.words.Say("Window|one sees through"), Area: true}
 	for i := range columns {
-		leaky.Cells = append(leaky.Cells, cell(columns[i].LeakyArea, columns[i].LeakyError))
-		window.Cells = append(window.Cells, cell(columns[i].WindowedArea, columns[i].WindowedError))
+		leaky.Cells = append(leaky.Cells, l.cell(columns[i].LeakyArea, columns[i].LeakyError))
+		window.Cells = append(window.Cells, l.cell(columns[i].WindowedArea, columns[i].WindowedError))
 	}
 	return append(rows, leaky, window)
 }
 
-func cell(share, standardError float64) LedgerCell {
+func (l *Look) cell(share, standardError float64) LedgerCell {
 	const naught = 5e-5 // what four decimals write as 0.0000
 	return LedgerCell{
 		Share:       share,
-		Value:       strconv.FormatFloat(share, 'f', 4, 64),
-		Error:       "±" + strconv.FormatFloat(math.Ceil(standardError*1e4)/1e4, 'f', 4, 64), // never told smaller than it is
+		Value:       l.words.Say("%.4f", share),
+		Error:       l.words.Say("±%.4f", math.Ceil(standardError*1e4)/1e4), // never told smaller than it is
 		Significant: share >= naught,
 	}
 }
@@ -174,15 +163,15 @@ func (l *Look) Status() string {
 	p := l.Progress()
 	switch {
 	case p.Active && p.Share == 0:
-		return "tracing"
+		return l.words.Say("tracing")
 	case p.Active:
-		return fmt.Sprintf("refining %2.0f %%", 100*p.Share)
+		return l.words.Say("refining %2.0f %%", 100*p.Share)
 	case p.Stopped && l.Frame != nil:
-		return fmt.Sprintf("stopped at %2.0f %%, errors up to ±%.4f", 100*p.Share, l.worstError())
+		return l.words.Say("stopped at %2.0f %%, errors up to ±%.4f", 100*p.Share, l.worstError())
 	case p.Stopped:
-		return "stopped"
+		return l.words.Say("stopped")
 	case l.Frame != nil:
-		return fmt.Sprintf("done, errors up to ±%.4f", l.worstError())
+		return l.words.Say("done, errors up to ±%.4f", l.worstError())
 	}
 	return ""
 }
@@ -194,4 +183,9 @@ func (l *Look) worstError() float64 {
 		worst = max(worst, l.Frame.Result.Columns[i].StandardError.Max())
 	}
 	return worst
+}
+
+// SideName returns what a side of the stone is called.
+func SideName(s facets.Side) words.Key {
+	return [...]words.Key{facets.Pavilion: "Pavilion", facets.Girdle: "Girdle", facets.Crown: "Crown", facets.Table: "Table"}[s]
 }

@@ -1,8 +1,8 @@
 package ui
 
 import (
-	"fmt"
 	"path/filepath"
+	"strconv"
 	"strings"
 
 	"fyne.io/fyne/v2"
@@ -15,6 +15,7 @@ import (
 	"pavilight/app/model"
 	"pavilight/app/sheet"
 	"pavilight/app/version"
+	"pavilight/app/words"
 )
 
 // cutBench is the room where the sheet for the bench is laid out.
@@ -42,17 +43,18 @@ func (w *window) buildCutRoom() fyne.CanvasObject {
 		machines, _ := sheet.UserMachines() // without a folder there is the plain machine
 		c.cut = model.NewCut(machines, w.do, w.refreshCut)
 	}
+	c.cut.SetWords(w.words)
 	c.pages = w.newPageTurner(func(by int) { c.cut.Turn(c.cut.Page + by) }, c.cut.SetWidth)
-	c.film = newFilmView(c.cut, w.do, w.strayKey)
-	for k, name := range []string{"Pages", "Step by step"} {
-		c.doors[k] = newRoomButton(name, func() { w.showFilm(k == 1) })
+	c.film = newFilmView(w.words, c.cut, w.do, w.strayKey)
+	for k, name := range []words.Key{"Pages", "Step by step"} {
+		c.doors[k] = newRoomButton(w.words.Say(name), func() { w.showFilm(k == 1) })
 	}
 	c.doors[0].setOpen(true)
 	c.bar = container.NewBorder(nil, nil, container.NewHBox(c.doors[0], c.doors[1]), c.pages.bar)
 	c.troubles = widget.NewLabel("")
 	c.troubles.Wrapping = fyne.TextWrapWord
 	c.troubles.Selectable = true
-	heading := newWord(theme.ColorNameError, theme.SizeNameSubHeadingText, "There is no sheet of this plan").bold()
+	heading := newWord(theme.ColorNameError, theme.SizeNameSubHeadingText, w.words.Say("There is no sheet of this plan")).bold()
 	c.trouble = container.NewCenter(container.NewGridWrap(fyne.NewSize(560, 300),
 		container.NewBorder(heading, nil, nil, nil, container.NewVScroll(c.troubles))))
 	c.paper = container.NewStack(ground(theme.ColorNameBackground), c.pages.page.scroll)
@@ -68,38 +70,46 @@ func (w *window) buildCutRoom() fyne.CanvasObject {
 func (w *window) cutWishes() fyne.CanvasObject {
 	c := &w.cutting
 	change := func(f func(*model.CutWish)) { c.cut.Change(f) }
-	label := func(s string) fyne.CanvasObject { return newWord(colourDim, theme.SizeNameText, s) }
-	heading := func(s string) fyne.CanvasObject {
-		return newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, s).bold()
+	label := func(s words.Key) fyne.CanvasObject { return newWord(colourDim, theme.SizeNameText, w.words.Say(s)) }
+	heading := func(s words.Key) fyne.CanvasObject {
+		return newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, w.words.Say(s)).bold()
 	}
 	var papers []string
 	for _, p := range sheet.Papers() {
-		papers = append(papers, paperWords(p.Name))
+		papers = append(papers, w.paperWords(p.Name))
 	}
 	paper := widget.NewSelect(papers, nil)
-	paper.SetSelected(papers[0])
+	paper.SetSelected(w.paperWords(c.cut.Wish.Paper))
 	paper.OnChanged = func(chosen string) {
 		for _, p := range sheet.Papers() {
-			if paperWords(p.Name) == chosen {
-				change(func(w *model.CutWish) { w.Paper = p.Name })
+			if w.paperWords(p.Name) == chosen {
+				change(func(wish *model.CutWish) { wish.Paper = p.Name })
 			}
 		}
 	}
-	orders := []string{"in gear order", "opposites first"}
+	orders := []string{w.words.Say("in gear order"), w.words.Say("opposites first")}
 	order := widget.NewSelect(orders, nil)
 	order.SetSelected(orders[0])
+	if c.cut.Wish.Opposites {
+		order.SetSelected(orders[1])
+	}
 	order.OnChanged = func(chosen string) { change(func(w *model.CutWish) { w.Opposites = chosen == orders[1] }) }
 	c.machine = newChooser(theme.SizeNameText, w.machineItems)
 	c.machine.tip = tip{w.tips, tipMachine}
-	c.machine.setText(plainMachine)
-	check := func(words string, on bool, set func(*model.CutWish, bool)) fyne.CanvasObject {
-		box := widget.NewCheck(words, nil)
+	c.machine.setText(w.machineWords(c.cut.Wish.Machine))
+	check := func(label words.Key, on bool, set func(*model.CutWish, bool)) fyne.CanvasObject {
+		box := widget.NewCheck(w.words.Say(label), nil)
 		box.Checked = on
 		box.OnChanged = func(on bool) { change(func(w *model.CutWish) { set(w, on) }) }
 		return box
 	}
 	c.gears = widget.NewEntry()
 	c.gears.SetPlaceHolder("64, 80")
+	var gears []string
+	for _, g := range c.cut.Wish.Gears {
+		gears = append(gears, strconv.Itoa(g))
+	}
+	c.gears.SetText(strings.Join(gears, ", "))
 	c.gears.OnSubmitted = func(text string) {
 		gears, err := model.ReadGears(text)
 		w.say(err)
@@ -107,34 +117,39 @@ func (w *window) cutWishes() fyne.CanvasObject {
 			change(func(w *model.CutWish) { w.Gears = gears })
 		}
 	}
-	c.write = widget.NewButton("Save as PDF…", w.writeSheet)
+	c.write = widget.NewButton(w.words.Say("Save as PDF…"), w.writeSheet)
 	c.write.Importance = widget.HighImportance
-	c.print = widget.NewButton("Print…", w.printSheet)
+	c.print = widget.NewButton(w.words.Say("Print…"), w.printSheet)
 	c.notes = newWrapped(colourDim, theme.SizeNameCaptionText)
-	row := func(words string, o fyne.CanvasObject) fyne.CanvasObject {
-		return container.New(&formRow{}, label(words), o)
+	row := func(name words.Key, o fyne.CanvasObject) fyne.CanvasObject {
+		return container.New(&formRow{}, label(name), o)
 	}
 	wishes := container.New(layout.NewCustomPaddedVBoxLayout(5), heading("Sheet for the bench"),
 		row("Paper", paper), row("Machine", c.machine), row("Indices", order), row("Other gears", c.gears),
-		check("Type a quarter larger", false, func(w *model.CutWish, on bool) { w.Large = on }),
-		check("With maps and ledger", true, func(w *model.CutWish, on bool) { w.Maps = on }),
+		check("Type a quarter larger", c.cut.Wish.Large, func(w *model.CutWish, on bool) { w.Large = on }),
+		check("With maps and ledger", c.cut.Wish.Maps, func(w *model.CutWish, on bool) { w.Maps = on }),
 		gap(1), heading("For a pupil, leave out"),
-		check("Angles", false, func(w *model.CutWish, on bool) { w.LeaveOut.Angles = on }),
-		check("Indices", false, func(w *model.CutWish, on bool) { w.LeaveOut.Indices = on }),
-		check("Where to stop", false, func(w *model.CutWish, on bool) { w.LeaveOut.Stops = on }))
+		check("Angles", c.cut.Wish.LeaveOut.Angles, func(w *model.CutWish, on bool) { w.LeaveOut.Angles = on }),
+		check("Indices", c.cut.Wish.LeaveOut.Indices, func(w *model.CutWish, on bool) { w.LeaveOut.Indices = on }),
+		check("Where to stop", c.cut.Wish.LeaveOut.Stops, func(w *model.CutWish, on bool) { w.LeaveOut.Stops = on }))
 	foot := container.New(layout.NewCustomPaddedVBoxLayout(6),
 		container.NewGridWrap(fyne.NewSize(planWide-28, 6*lineHeight()), c.notes), c.write, c.print)
 	return container.New(layout.NewCustomPaddedLayout(12, 14, 14, 14),
 		container.NewBorder(nil, foot, nil, nil, container.NewVScroll(wishes)))
 }
 
-// plainMachine stands for a machine that nobody has described.
-const plainMachine = "plain, none named"
+// machineWords names one of the user's machines, or the one that nobody has described.
+func (w *window) machineWords(name string) string {
+	if name == "" {
+		return w.words.Say("plain, none named")
+	}
+	return name
+}
 
-func paperWords(name string) string {
+func (w *window) paperWords(name string) string {
 	for _, p := range sheet.Papers() {
 		if p.Name == name {
-			return fmt.Sprintf("%s  %g × %g mm", strings.ToUpper(name[:1])+name[1:], p.Width, p.Height)
+			return w.words.Say("%s  %g × %g mm", words.Upper(name), p.Width, p.Height)
 		}
 	}
 	return name
@@ -143,32 +158,32 @@ func paperWords(name string) string {
 // machineItems lists the user's machines as the folder has them now.
 func (w *window) machineItems() []*fyne.MenuItem {
 	c := &w.cutting
-	choose := func(name, words string) *fyne.MenuItem {
-		i := fyne.NewMenuItem(words, func() {
-			c.machine.setText(words)
+	choose := func(name string) *fyne.MenuItem {
+		i := fyne.NewMenuItem(w.machineWords(name), func() {
+			c.machine.setText(w.machineWords(name))
 			c.cut.Change(func(w *model.CutWish) { w.Machine = name })
 		})
 		i.Checked = c.cut.Wish.Machine == name
 		return i
 	}
-	items := []*fyne.MenuItem{choose("", plainMachine)}
+	items := []*fyne.MenuItem{choose("")}
 	for _, name := range c.cut.Machines.Names() {
-		items = append(items, choose(name, name))
+		items = append(items, choose(name))
 	}
 	return append(items, fyne.NewMenuItemSeparator(),
-		fyne.NewMenuItem("Describe another…", w.describeMachine))
+		w.item("Describe another…", nil, w.describeMachine))
 }
 
 // describeMachine asks for the name of a new machine, writes a description to start from,
 // and opens it with the system's editor.
 func (w *window) describeMachine() {
 	name := w.newFormEntry()
-	name.SetPlaceHolder("old red")
-	words := newWrapped(colourDim, theme.SizeNameText)
-	words.setText("A file with a line for each of the machine's numbers is opened in the system's editor. " +
-		"Set the numbers, save it, and choose the machine from this list.")
-	content := container.NewVBox(name, container.NewGridWrap(fyne.NewSize(380, 4*lineHeight()), words))
-	d := dialog.NewCustomConfirm("Name of the machine", "Describe it", "Cancel", content, func(yes bool) {
+	name.SetPlaceHolder(w.words.Say("old red|name of a machine"))
+	help := newWrapped(colourDim, theme.SizeNameText)
+	help.setText(w.words.Say("A file with a line for each of the machine's numbers is opened in the system's editor. " +
+		"Set the numbers, save it, and choose the machine from this list."))
+	content := container.NewVBox(name, container.NewGridWrap(fyne.NewSize(380, 4*lineHeight()), help))
+	d := dialog.NewCustomConfirm(w.words.Say("Name of the machine"), w.words.Say("Describe it"), w.words.Say("Cancel"), content, func(yes bool) {
 		if yes {
 			w.newMachine(strings.TrimSpace(name.Text))
 		}
@@ -183,7 +198,7 @@ func (w *window) newMachine(name string) {
 		w.explain("The machine cannot be described", err)
 		return
 	}
-	w.report("Described in " + path)
+	w.report("Described in %s", path)
 	go func() {
 		if err := openWithSystem(path); err != nil {
 			w.do(func() { w.explain("The description was written, but not opened", err) })
@@ -227,16 +242,16 @@ func (w *window) refreshCut() {
 		c.bar.Refresh() // it had no room while it was hidden
 	}
 	if failed {
-		c.troubles.SetText(strings.Join(model.InWords(c.cut.Trouble), "\n\n"))
+		c.troubles.SetText(strings.Join(model.InWords(w.words, c.cut.Trouble), "\n\n"))
 	}
 	enable(c.write, c.cut.Ready())
 	enable(c.print, c.cut.Ready())
 	var notes []string
 	if c.cut.Wish.LeaveOut.Any() {
-		notes = append(notes, "A teacher's copy with the answers is saved beside the pupil's.")
+		notes = append(notes, w.words.Say("A teacher's copy with the answers is saved beside the pupil's."))
 	}
 	for _, n := range c.cut.Notes() {
-		notes = append(notes, strings.ToUpper(n[:1])+n[1:]+".")
+		notes = append(notes, words.Upper(n)+".")
 	}
 	c.notes.setText(strings.Join(notes, " "))
 	if !failed && c.filming {
@@ -252,19 +267,19 @@ func (w *window) refreshCut() {
 }
 
 // at is what the room is at, for the header.
-func (c *cutBench) at() runState {
+func (c *cutBench) at(w *words.Words) runState {
 	s := runState{share: c.cut.Done, active: c.cut.Running, stopped: c.cut.Stopped}
 	switch {
 	case c.cut.Running && c.cut.Sheet != nil && c.cut.Wish.Maps:
-		s.words = fmt.Sprintf("tracing the maps %.0f %%", 100*c.cut.Done)
+		s.words = w.Say("tracing the maps %.0f %%", 100*c.cut.Done)
 	case c.cut.Running:
-		s.words = "laying the pages out"
+		s.words = w.Say("laying the pages out")
 	case c.cut.Trouble != nil:
-		s.words = "no sheet"
+		s.words = w.Say("no sheet")
 	case c.cut.Stopped:
-		s.words = "stopped, without maps"
+		s.words = w.Say("stopped, without maps")
 	case c.cut.Pages() > 0:
-		s.words = fmt.Sprintf("%d pages, as they are printed", c.cut.Pages())
+		s.words = w.Say("%d pages, as they are printed", c.cut.Pages())
 	}
 	return s
 }
@@ -275,7 +290,7 @@ func (w *window) writeSheet() {
 	w.askTarget("Save the sheet", "The sheet cannot be written there", c.cut.FileName(), []string{".pdf"}, func(path string) {
 		answers, two := c.cut.AnswersName(path)
 		if two && exists(answers) {
-			w.raise(dialog.NewConfirm("The teacher's copy", filepath.Base(answers)+" is there already. Replace it?",
+			w.raise(dialog.NewConfirm(w.words.Say("The teacher's copy"), w.words.Say("%s is there already. Replace it?", filepath.Base(answers)),
 				func(yes bool) {
 					if yes {
 						w.writeSheetTo(path)
@@ -293,7 +308,7 @@ func (w *window) writeSheetTo(path string) {
 			w.explain("The sheet was not written", err)
 			return
 		}
-		w.report("Written to " + strings.Join(files, " and "))
+		w.report("Written to %s", strings.Join(files, w.words.Say(" and ")))
 		w.tell("written")
 	})
 }

@@ -15,6 +15,7 @@ import (
 
 	"pavilight/app/disk"
 	"pavilight/app/model"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/testdata"
 )
@@ -24,7 +25,7 @@ func (w *window) open(path string) {
 	w.commitTyping()
 	w.bench.Open(path, func(err error) {
 		if err != nil {
-			w.explain(filepath.Base(path)+" cannot be opened", err)
+			w.explain("%s cannot be opened", err, filepath.Base(path))
 			w.tell("refused")
 			return
 		}
@@ -42,7 +43,7 @@ func (w *window) openSample(name string) {
 		err = w.bench.OpenText(text, name)
 	}
 	if err != nil {
-		w.explain("The sample "+name+" cannot be opened", err)
+		w.explain("The sample %s cannot be opened", err, name)
 		return
 	}
 	w.afterOpening()
@@ -65,27 +66,27 @@ func (w *window) commitTyping() {
 }
 
 // explain tells what went wrong, fault by fault, and that nothing is lost.
-func (w *window) explain(title string, err error) {
-	text := widget.NewLabel(strings.Join(model.InWords(err), "\n\n"))
+func (w *window) explain(title words.Key, err error, args ...any) {
+	text := widget.NewLabel(strings.Join(model.InWords(w.words, err), "\n\n"))
 	text.Wrapping = fyne.TextWrapWord
 	text.Selectable = true
 	keeps := newWrapped(colourDim, "text")
-	keeps.setText("The stone that was open stays as it is.")
+	keeps.setText(w.words.Say("The stone that was open stays as it is."))
 	scroll := container.NewVScroll(text)
 	scroll.SetMinSize(fyne.NewSize(min(560, w.win.Canvas().Size().Width-120), 170))
-	d := dialog.NewCustom(title, "Close", container.NewBorder(nil,
+	d := dialog.NewCustom(w.words.Say(title, args...), w.words.Say("Close"), container.NewBorder(nil,
 		container.NewGridWrap(fyne.NewSize(400, 24), keeps), nil, nil, scroll), w.win)
 	w.raise(d)
 }
 
 // notice tells something that needs no answer.
-func (w *window) notice(title, text string) {
-	w.raise(dialog.NewCustom(title, "Close", widget.NewLabel(text), w.win))
+func (w *window) notice(title, text words.Key, args ...any) {
+	w.raise(dialog.NewCustom(w.words.Say(title), w.words.Say("Close"), widget.NewLabel(w.words.Say(text, args...)), w.win))
 }
 
 // openDialog asks which plan to open.
 func (w *window) openDialog() {
-	w.unlessUnsaved("open another plan", func() {
+	w.unlessUnsaved("Save them before you open another plan?", func() {
 		d := dialog.NewFileOpen(func(r fyne.URIReadCloser, err error) {
 			if err != nil {
 				w.explain("The file cannot be opened", err)
@@ -99,14 +100,14 @@ func (w *window) openDialog() {
 			w.open(path)
 		}, w.win)
 		d.SetFilter(storage.NewExtensionFileFilter(append(model.ScanExtensions(), ".toml")))
-		d.SetTitleText("Open a plan or a scan")
+		d.SetTitleText(w.words.Say("Open a plan or a scan"))
 		w.showFileDialog(d)
 	})
 }
 
 // askTarget asks for a file to write to and hands on its path. A name without an ending
 // gets the first of those that are offered.
-func (w *window) askTarget(title, trouble, name string, endings []string, then func(path string)) {
+func (w *window) askTarget(title, trouble words.Key, name string, endings []string, then func(path string)) {
 	d := dialog.NewFileSave(func(f fyne.URIWriteCloser, err error) {
 		if err != nil {
 			w.explain(trouble, err)
@@ -124,7 +125,7 @@ func (w *window) askTarget(title, trouble, name string, endings []string, then f
 	}, w.win)
 	d.SetFileName(name)
 	d.SetFilter(storage.NewExtensionFileFilter(endings))
-	d.SetTitleText(title)
+	d.SetTitleText(w.words.Say(title))
 	w.showFileDialog(d)
 }
 
@@ -191,7 +192,7 @@ func (w *window) writeOver(path string, over bool, then func()) {
 			w.keeper.forgetTaken()
 			w.files.keepRecent(path)
 			w.refreshMenu()
-			w.report("Saved as " + path)
+			w.report("Saved as %s", path)
 			w.tell("saved")
 			w.look()
 			then()
@@ -202,12 +203,12 @@ func (w *window) writeOver(path string, over bool, then func()) {
 // askOver asks what to do about a file that other hands wrote to since it was read.
 func (w *window) askOver(path string, then func()) {
 	var d *dialog.CustomDialog
-	choice := func(label string, do func()) *widget.Button {
-		return widget.NewButton(label, func() { d.Hide(); do() })
+	choice := func(label words.Key, do func()) *widget.Button {
+		return widget.NewButton(w.words.Say(label), func() { d.Hide(); do() })
 	}
-	text := widget.NewLabel("“" + filepath.Base(path) + "” was written to by another program or window\n" +
-		"since it was read here. Nothing was saved yet.")
-	d = dialog.NewCustomWithoutButtons("The file has changed", text, w.win)
+	text := widget.NewLabel(w.words.Say("“%s” was written to by another program or window\n"+
+		"since it was read here. Nothing was saved yet.", filepath.Base(path)))
+	d = dialog.NewCustomWithoutButtons(w.words.Say("The file has changed"), text, w.win)
 	d.SetButtons([]fyne.CanvasObject{
 		choice("Cancel", func() {}),
 		choice("Replace it", func() { w.writeOver(path, true, then) }),
@@ -226,11 +227,11 @@ func (w *window) dropped(_ fyne.Position, uris []fyne.URI) {
 	if len(uris) > 1 {
 		w.report("Several files were dropped; the first is opened.")
 	}
-	w.unlessUnsaved("open "+filepath.Base(path), func() { w.open(path) })
+	w.unlessUnsaved("Save them before you open %s?", func() { w.open(path) }, filepath.Base(path))
 }
 
 // unlessUnsaved does what would lose unsaved work, but asks before it if there is any.
-func (w *window) unlessUnsaved(what string, do func()) {
+func (w *window) unlessUnsaved(question words.Key, do func(), args ...any) {
 	w.commitTyping()
 	if !w.bench.Doc.Modified() {
 		do()
@@ -238,15 +239,15 @@ func (w *window) unlessUnsaved(what string, do func()) {
 	}
 	var d *dialog.CustomDialog
 	w.asked = map[string]*widget.Button{}
-	choice := func(label string, importance widget.Importance, then func()) *widget.Button {
-		b := widget.NewButton(label, func() { d.Hide(); w.asked = nil; then() })
+	choice := func(label words.Key, importance widget.Importance, then func()) *widget.Button {
+		b := widget.NewButton(w.words.Say(label), func() { d.Hide(); w.asked = nil; then() })
 		b.Importance = importance
-		w.asked[label] = b
+		w.asked[string(label)] = b
 		return b
 	}
-	text := widget.NewLabel("“" + strings.TrimSuffix(w.bench.Doc.Title(), "*") +
-		"” has changes that are not saved.\nSave them before you " + what + "?")
-	d = dialog.NewCustomWithoutButtons("Unsaved changes", text, w.win)
+	name := strings.TrimSuffix(w.bench.Doc.Title(w.words), "*")
+	text := widget.NewLabel(w.words.Say("“%s” has changes that are not saved.", name) + "\n" + w.words.Say(question, args...))
+	d = dialog.NewCustomWithoutButtons(w.words.Say("Unsaved changes"), text, w.win)
 	d.SetButtons([]fyne.CanvasObject{
 		choice("Cancel", widget.MediumImportance, func() {}),
 		choice("Discard", widget.MediumImportance, do),
@@ -258,7 +259,7 @@ func (w *window) unlessUnsaved(what string, do func()) {
 
 // requestClose closes the window, but asks first if work would be lost.
 func (w *window) requestClose() {
-	w.unlessUnsaved("leave", w.close)
+	w.unlessUnsaved("Save them before you leave?", w.close)
 }
 
 // close ends the window; what is unsaved is not wanted.

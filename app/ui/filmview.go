@@ -11,6 +11,7 @@ import (
 
 	"pavilight/app/model"
 	"pavilight/app/solid"
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
@@ -18,6 +19,7 @@ import (
 // machine is set to, and what comes off.
 type filmView struct {
 	cut    *model.Cut
+	words  *words.Words
 	do     func(func())
 	box    *fyne.Container
 	solid  *solidView
@@ -37,21 +39,21 @@ type filmView struct {
 // filmWords is the width of the words beside the stone.
 const filmWords = 300
 
-func newFilmView(cut *model.Cut, do func(func()), stray func(*fyne.KeyEvent)) *filmView {
-	f := &filmView{cut: cut, do: do}
+func newFilmView(in *words.Words, cut *model.Cut, do func(func()), stray func(*fyne.KeyEvent)) *filmView {
+	f := &filmView{words: in, cut: cut, do: do}
 	f.solid = newSolidView(func(string) {}, stray)
-	f.bar = newStepBar(func(step int) { f.halt(); cut.GoTo(step) }, stray)
+	f.bar = newStepBar(in, func(step int) { f.halt(); cut.GoTo(step) }, stray)
 	f.title = newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, "").bold()
 	f.facts = newFactTable()
 	f.none = newWrapped(colourDim, theme.SizeNameText)
-	f.back = widget.NewButtonWithIcon("Back", theme.NavigateBackIcon(), func() { f.halt(); cut.GoTo(cut.Step - 1) })
-	f.next = widget.NewButtonWithIcon("Next", theme.NavigateNextIcon(), func() { f.halt(); cut.GoTo(cut.Step + 1) })
-	f.play = widget.NewButtonWithIcon("Run", theme.MediaPlayIcon(), f.run)
-	words := container.New(layout.NewCustomPaddedLayout(14, 14, 8, 16), container.NewBorder(f.title,
+	f.back = widget.NewButtonWithIcon(in.Say("Back"), theme.NavigateBackIcon(), func() { f.halt(); cut.GoTo(cut.Step - 1) })
+	f.next = widget.NewButtonWithIcon(in.Say("Next"), theme.NavigateNextIcon(), func() { f.halt(); cut.GoTo(cut.Step + 1) })
+	f.play = widget.NewButtonWithIcon(in.Say("Run|a film"), theme.MediaPlayIcon(), f.run)
+	told := container.New(layout.NewCustomPaddedLayout(14, 14, 8, 16), container.NewBorder(f.title,
 		container.NewGridWithColumns(3, f.back, f.play, f.next), nil, nil,
 		container.NewVScroll(container.New(layout.NewCustomPaddedLayout(8, 8, 0, 8), f.facts.box))))
 	stage := container.NewBorder(nil, container.New(layout.NewCustomPaddedLayout(0, 10, 14, 14), f.bar), nil, nil, f.solid)
-	f.box = container.NewStack(pane(container.New(&rightLayout{width: filmWords}, stage, words)),
+	f.box = container.NewStack(pane(container.New(&rightLayout{width: filmWords}, stage, told)),
 		container.NewCenter(container.NewGridWrap(fyne.NewSize(420, 90), f.none)))
 	return f
 }
@@ -72,7 +74,7 @@ func (f *filmView) refresh() {
 	if !ok {
 		f.none.setText("")
 		if s := f.cut.Sheet; s != nil && s.LightModel {
-			f.none.setText("Diamond is worked with other machines and other training: its sheet shows light and shape, and gives no steps.")
+			f.none.setText(f.words.Say("Diamond is worked with other machines and other training: its sheet shows light and shape, and gives no steps."))
 		}
 		f.shown = false
 		return
@@ -89,7 +91,7 @@ func (f *filmView) refresh() {
 	}
 	f.title.setText(step.Title)
 	f.facts.show(step.Facts)
-	names, shares := []string{"rough"}, []float64{0}
+	names, shares := []string{f.words.Say("rough")}, []float64{0}
 	for i := range f.cut.Steps() {
 		names = append(names, f.cut.Sheet.Rows[i].Tier.Name)
 		shares = append(shares, f.cut.Off(i+1)-f.cut.Off(i))
@@ -97,12 +99,12 @@ func (f *filmView) refresh() {
 	f.bar.show(names, shares, f.cut.Step)
 	enable(f.back, f.cut.Step > 0)
 	enable(f.next, f.cut.Step < f.cut.Steps())
-	words, icon := "Run", theme.MediaPlayIcon()
+	label, icon := f.words.Say("Run|a film"), theme.MediaPlayIcon()
 	if f.reel != 0 {
-		words, icon = "Halt", theme.MediaPauseIcon()
+		label, icon = f.words.Say("Halt"), theme.MediaPauseIcon()
 	}
-	if f.play.Text != words {
-		f.play.SetText(words)
+	if f.play.Text != label {
+		f.play.SetText(label)
 		f.play.SetIcon(icon)
 	}
 }

@@ -7,6 +7,8 @@ import (
 	"fyne.io/fyne/v2/canvas"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
+
+	"pavilight/app/words"
 )
 
 // fromBins is how many bins of five degrees there are from the eye to the horizon.
@@ -16,14 +18,15 @@ const fromBins = 18
 // eye, a line a surrounding, with the viewer's head shaded.
 type fromPlot struct {
 	widget.BaseWidget
+	words  *words.Words
 	curves [columns][fromBins]float64
 	names  [columns]string
 	head   float64 // degrees
 	known  bool
 }
 
-func newFromPlot() *fromPlot {
-	p := &fromPlot{}
+func newFromPlot(in *words.Words) *fromPlot {
+	p := &fromPlot{words: in}
 	p.ExtendBaseWidget(p)
 	return p
 }
@@ -41,12 +44,9 @@ func (p *fromPlot) top() (share float64, word string) {
 			most = max(most, v)
 		}
 	}
-	for _, s := range []struct {
-		share float64
-		word  string
-	}{{0.05, "0.05"}, {0.1, "0.1"}, {0.2, "0.2"}, {0.5, "0.5"}} {
-		if most <= s.share {
-			return s.share, s.word
+	for _, s := range []float64{0.05, 0.1, 0.2, 0.5} {
+		if most <= s {
+			return s, p.words.Say("%g", s)
 		}
 	}
 	return 1, "1"
@@ -140,7 +140,7 @@ func (r *fromPlotRenderer) Layout(size fyne.Size) {
 
 func (r *fromPlotRenderer) Refresh() {
 	_, top := r.p.top()
-	for i, s := range []string{top, "0°", "45°", "90°", "head"} {
+	for i, s := range []string{top, "0°", "45°", "90°", r.p.words.Say("head")} {
 		r.words[i].Text, r.words[i].TextSize, r.words[i].Color = s, theme.CaptionTextSize(), themed(colourDim)
 	}
 	r.words[4].TextSize = theme.CaptionTextSize() - 2

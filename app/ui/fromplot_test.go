@@ -11,7 +11,7 @@ import (
 // sizes: rounding must not keep the names from coming to rest, and none covers another.
 func TestNamesOfCurvesStandApart(t *testing.T) {
 	test.NewTempApp(t)
-	p := newFromPlot()
+	p := newFromPlot(nil)
 	for high := range 20 {
 		var curves [columns][fromBins]float64
 		for j := range curves {

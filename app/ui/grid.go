@@ -10,6 +10,7 @@ import (
 	"fyne.io/fyne/v2/theme"
 
 	"pavilight/app/model"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/trace"
@@ -22,6 +23,7 @@ const columns = 3
 // the ledger under each column.
 type grid struct {
 	bench *model.Bench
+	words *words.Words
 
 	box      *fyne.Container
 	media    [columns]*chooser
@@ -47,7 +49,7 @@ type grid struct {
 
 // newGrid builds the grid; stray takes the keys that it has no use for.
 func newGrid(bench *model.Bench, stray func(*fyne.KeyEvent)) *grid {
-	g := &grid{bench: bench}
+	g := &grid{bench: bench, words: bench.Words()}
 	g.box = container.NewWithoutLayout() // until all is in it
 	for j := range columns {
 		g.media[j] = newChooser(theme.SizeNameSubHeadingText, func() []*fyne.MenuItem { return g.mediaItems(j) })
@@ -58,7 +60,7 @@ func newGrid(bench *model.Bench, stray func(*fyne.KeyEvent)) *grid {
 	for i := range model.Rows {
 		g.row[i] = newChooser(theme.SizeNameText, func() []*fyne.MenuItem { return g.quantityItems(i) })
 		g.meaning[i] = newWrapped(colourDim, theme.SizeNameCaptionText)
-		g.scales[i] = newScaleBar()
+		g.scales[i] = newScaleBar(bench.Words())
 		g.add(g.row[i], g.meaning[i])
 		for j := range columns {
 			g.maps[i][j] = newMapView(bench.Look.Point, bench.Look.PointAway,
@@ -77,8 +79,8 @@ func newGrid(bench *model.Bench, stray func(*fyne.KeyEvent)) *grid {
 	g.strip = newTiltStrip(bench.Look, func(stop int) { g.onTilt(bench.Look.Strip.Tilts[stop]) })
 	g.strip.stray = stray
 	g.rocking = newLine(theme.ColorNameForeground, theme.SizeNameText).bold()
-	g.rocking.setText("Rocked ±")
-	g.reach = newNumberField(readDegrees, func(v float64) string { return strconv.FormatFloat(v, 'f', -1, 64) }, 1)
+	g.rocking.setText(g.words.Say("Rocked ±"))
+	g.reach = newNumberField(readDegrees, func(v float64) string { return g.words.Decimal(strconv.FormatFloat(v, 'f', -1, 64)) }, 1)
 	g.reach.commit = func(v float64) error { return bench.Look.SetStripRange(facets.Angle(v) * facets.Degree) }
 	g.reach.show(bench.Look.StripRange().Degrees())
 	g.rocked = newWrapped(colourDim, theme.SizeNameCaptionText)
@@ -156,13 +158,13 @@ func (g *grid) mediaItems(column int) []*fyne.MenuItem {
 		if m.Group != gems.Gas && m.Group != gems.Liquid {
 			continue
 		}
-		item := fyne.NewMenuItem(m.Name, func() {
+		item := fyne.NewMenuItem(model.MaterialName(g.words, m), func() {
 			g.bench.SetAround(column, model.Around{Medium: m, Dish: now.Dish && m.Group == gems.Liquid})
 		})
 		item.Checked = m.Key == now.Medium.Key
 		items = append(items, item)
 	}
-	dish := fyne.NewMenuItem("In a dish, seen from air", func() {
+	dish := fyne.NewMenuItem(g.words.Say("In a dish, seen from air"), func() {
 		g.bench.SetAround(column, model.Around{Medium: now.Medium, Dish: !now.Dish})
 	})
 	dish.Checked, dish.Disabled = now.Dish, now.Medium.Group != gems.Liquid
@@ -173,7 +175,7 @@ func (g *grid) mediaItems(column int) []*fyne.MenuItem {
 func (g *grid) quantityItems(row int) []*fyne.MenuItem {
 	var items []*fyne.MenuItem
 	for _, s := range model.Choices() {
-		item := fyne.NewMenuItem(model.ShownName(s), func() { g.setRow(row, s) })
+		item := fyne.NewMenuItem(g.words.Say(model.ShownName(s)), func() { g.setRow(row, s) })
 		item.Checked = s == g.bench.Look.Row[row]
 		items = append(items, item)
 	}
@@ -202,8 +204,8 @@ func (g *grid) refreshHeadings() {
 	}
 	for i := range model.Rows {
 		s := g.bench.Look.Row[i]
-		g.row[i].setText(model.ShownName(s))
-		g.meaning[i].setText(model.ShownMeaning(s))
+		g.row[i].setText(g.words.Say(model.ShownName(s)))
+		g.meaning[i].setText(g.words.Say(model.ShownMeaning(s)))
 		g.scales[i].show(g.bench.Look.Scale(i))
 	}
 	g.rocked.setText(g.bench.Look.StripMeaning())

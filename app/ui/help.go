@@ -1,7 +1,6 @@
 package ui
 
 import (
-	"fmt"
 	"runtime"
 	"strings"
 
@@ -13,23 +12,24 @@ import (
 
 	"pavilight/app/licences"
 	"pavilight/app/version"
+	"pavilight/app/words"
 )
 
 // about says what the program is, which versions it runs on and what it is not.
 func (w *window) about() {
 	text := widget.NewLabel(strings.Join([]string{
-		"Where the light in a faceted gemstone goes, and how to cut it so that it comes back.",
-		"A map is a model. It grades no stone and replaces no laboratory. Not modelled: inclusions, haze, " +
-			"colour zones, fluorescence, fracture filling.",
+		w.words.Say("Where the light in a faceted gemstone goes, and how to cut it so that it comes back."),
+		w.words.Say("A map is a model. It grades no stone and replaces no laboratory. Not modelled: inclusions, haze, " +
+			"colour zones, fluorescence, fracture filling."),
 		version.Current().String(),
 	}, "\n\n"))
 	text.Wrapping = fyne.TextWrapWord
 	scroll := container.NewVScroll(text)
 	scroll.SetMinSize(fyne.NewSize(440, 240))
-	d := dialog.NewCustomWithoutButtons("About Pavilight", scroll, w.win)
+	d := dialog.NewCustomWithoutButtons(w.words.Say("About Pavilight"), scroll, w.win)
 	d.SetButtons([]fyne.CanvasObject{
 		widget.NewButton(w.words.Say("Licences"), func() { d.Hide(); w.licences() }),
-		widget.NewButton("Close", d.Hide),
+		widget.NewButton(w.words.Say("Close"), d.Hide),
 	})
 	w.raise(d)
 }
@@ -48,14 +48,14 @@ func (w *window) licences() {
 	list.OnSelected = list.Unselect
 	size := w.win.Canvas().Size()
 	room := container.NewGridWrap(fyne.NewSize(min(820, size.Width-80), min(520, size.Height-160)), list)
-	w.raise(dialog.NewCustom(w.words.Say("Licences of what Pavilight is built with"), "Close", room, w.win))
+	w.raise(dialog.NewCustom(w.words.Say("Licences of what Pavilight is built with"), w.words.Say("Close"), room, w.win))
 }
 
 // diagnostics is what helps to find a fault of the program.
 func (w *window) diagnostics() string {
 	s := w.bench.Look.Settings()
 	size := w.win.Canvas().Size()
-	return fmt.Sprintf("%s\nwindow %.0f x %.0f, scale %.2f, text %.1f, theme %s\n"+
+	return w.words.Say("%s\nwindow %.0f x %.0f, scale %.2f, text %.1f, theme %s\n"+
 		"processors %d, tracing on %d\nmaps of %d pixels\nplan %q: %s\nstate: %s\n",
 		version.Current().String(), size.Width, size.Height, w.win.Canvas().Scale(), w.files.textScale(), w.files.brightness(),
 		runtime.NumCPU(), s.Workers, s.Pixels, w.bench.Doc.Plan().Name, strings.Join(w.bench.Troubles(), "; "), w.bench.Look.Status())
@@ -68,10 +68,10 @@ func (w *window) copyDiagnostics() {
 
 // firstSteps gives three hints.
 func (w *window) firstSteps() {
-	hint := func(head, body string) fyne.CanvasObject {
-		text := widget.NewLabel(body)
+	hint := func(head, body words.Key, args ...any) fyne.CanvasObject {
+		text := widget.NewLabel(w.words.Say(body, args...))
 		text.Wrapping = fyne.TextWrapWord
-		return container.NewBorder(newWord(theme.ColorNameForeground, theme.SizeNameText, head).bold(), nil, nil, nil, text)
+		return container.NewBorder(newWord(theme.ColorNameForeground, theme.SizeNameText, w.words.Say(head)).bold(), nil, nil, nil, text)
 	}
 	all := container.NewVBox(
 		hint("Move a slider", "Every tier has its angle at the left. All six maps follow while the slider moves, then they refine. "+
@@ -82,5 +82,5 @@ func (w *window) firstSteps() {
 		hint("Open your own plan", "Drop a plan or a scan on the window, or take one of the samples from the File menu. "+
 			"What you change can be undone, step by step."),
 	)
-	w.raise(dialog.NewCustom("First steps", "Close", container.NewGridWrap(fyne.NewSize(520, 280), all), w.win))
+	w.raise(dialog.NewCustom(w.words.Say("First steps"), w.words.Say("Close"), container.NewGridWrap(fyne.NewSize(520, 280), all), w.win))
 }

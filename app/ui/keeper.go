@@ -1,7 +1,6 @@
 package ui
 
 import (
-	"fmt"
 	"path/filepath"
 	"sync"
 	"sync/atomic"
@@ -13,6 +12,7 @@ import (
 
 	"pavilight/app/disk"
 	"pavilight/app/model"
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
@@ -111,7 +111,7 @@ func (w *window) keptWork(err error) {
 	k.kept = nil // tried again
 	if !k.told {
 		k.told = true
-		w.say(fmt.Errorf("unsaved work cannot be kept against a crash: %w", err))
+		w.say(words.Errorf("unsaved work cannot be kept against a crash: %v", err))
 	}
 }
 
@@ -151,21 +151,21 @@ func (w *window) looked(stamp disk.Stamp, elsewhere bool) {
 	name := filepath.Base(doc.Path)
 	if elsewhere && w.keeper.shared != doc.Path {
 		w.keeper.shared = doc.Path
-		w.notice("Open in two windows", "“"+name+"” is open in another window of Pavilight, too.\n"+
-			"What is saved there is told here. Neither window writes\nover what the other has saved without asking.")
+		w.notice("Open in two windows", "“%s” is open in another window of Pavilight, too.\n"+
+			"What is saved there is told here. Neither window writes\nover what the other has saved without asking.", name)
 		w.tell("shared")
 	}
 	switch doc.Seen(stamp) {
 	case model.Gone:
 		w.onPlan()
-		w.say(fmt.Errorf("%s is gone from its folder; save the plan to write it again", name))
+		w.say(words.Errorf("%s is gone from its folder; save the plan to write it again", name))
 	case model.Lost:
 		w.onPlan()
-		w.say(fmt.Errorf("%s does not answer; if its drive was taken out, plug it in again, or save the plan elsewhere", name))
+		w.say(words.Errorf("%s does not answer; if its drive was taken out, plug it in again, or save the plan elsewhere", name))
 	case model.Back:
 		w.onPlan()
 		w.say(nil)
-		w.report(name + " is back in its folder.")
+		w.report("%s is back in its folder.", name)
 	case model.Changed:
 		w.askReload(doc.Path)
 	}
@@ -173,12 +173,12 @@ func (w *window) looked(stamp disk.Stamp, elsewhere bool) {
 
 // askReload asks what to do with a file that other hands changed.
 func (w *window) askReload(path string) {
-	text := filepath.Base(path) + " was changed by another program.\nRead it again?"
+	text := w.words.Say("%s was changed by another program.\nRead it again?", filepath.Base(path))
 	if w.bench.Doc.Modified() {
-		text += " Your own changes would be lost."
+		text += " " + w.words.Say("Your own changes would be lost.")
 	}
 	w.keeper.asking = true
-	d := dialog.NewConfirm("The file has changed", text, func(again bool) {
+	d := dialog.NewConfirm(w.words.Say("The file has changed"), text, func(again bool) {
 		w.keeper.asking = false
 		if again {
 			w.open(path)
@@ -186,8 +186,8 @@ func (w *window) askReload(path string) {
 		}
 		w.bench.KeepMine()
 	}, w.win)
-	d.SetConfirmText("Read again")
-	d.SetDismissText("Keep mine")
+	d.SetConfirmText(w.words.Say("Read again"))
+	d.SetDismissText(w.words.Say("Keep mine"))
 	w.raise(d)
 	w.tell("changed")
 }
@@ -235,12 +235,12 @@ func (w *window) offer(found []model.Recovered) {
 	if work.Path != "" {
 		name += " (" + filepath.Base(work.Path) + ")"
 	}
-	words := fmt.Sprintf("An earlier run ended before “%s” was saved.\nIts changes up to %s were kept.",
-		name, work.Saved.Format("2 January 15:04"))
+	told := w.words.Say("An earlier run ended before “%s” was saved.\nIts changes up to %s were kept.",
+		name, w.words.Moment(work.Saved))
 	if work.Changed {
-		words += "\nIts file was written to since; it is left alone until you save."
+		told += "\n" + w.words.Say("Its file was written to since; it is left alone until you save.")
 	}
-	text := widget.NewLabel(words)
+	text := widget.NewLabel(told)
 	var d *dialog.CustomDialog
 	next := func(do func()) func() {
 		return func() {
@@ -251,15 +251,15 @@ func (w *window) offer(found []model.Recovered) {
 			}
 		}
 	}
-	take := widget.NewButton("Take them up", func() {
+	take := widget.NewButton(w.words.Say("Take them up"), func() {
 		d.Hide()
 		w.take(work)
 	})
 	take.Importance = widget.HighImportance
-	d = dialog.NewCustomWithoutButtons("Unsaved work", text, w.win)
+	d = dialog.NewCustomWithoutButtons(w.words.Say("Unsaved work"), text, w.win)
 	d.SetButtons([]fyne.CanvasObject{
-		widget.NewButton("Discard them", next(func() { w.keeper.recovery.Discard(work) })),
-		widget.NewButton("Later", next(func() {})),
+		widget.NewButton(w.words.Say("Discard them"), next(func() { w.keeper.recovery.Discard(work) })),
+		widget.NewButton(w.words.Say("Later"), next(func() {})),
 		take,
 	})
 	w.raise(d)

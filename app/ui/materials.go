@@ -1,7 +1,6 @@
 package ui
 
 import (
-	"fmt"
 	"strings"
 
 	"fyne.io/fyne/v2"
@@ -9,6 +8,8 @@ import (
 	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/widget"
 
+	"pavilight/app/model"
+	"pavilight/app/words"
 	"pavilight/gems"
 )
 
@@ -16,7 +17,7 @@ import (
 func (w *window) chooseMaterial() { w.pickMaterial("What the stone is made of", w.bench.SetMaterial) }
 
 // pickMaterial lets the user pick a material from a list that narrows as they type.
-func (w *window) pickMaterial(title string, then func(*gems.Material)) {
+func (w *window) pickMaterial(title words.Key, then func(*gems.Material)) {
 	all := w.bench.Stock.Stones()
 	shown := all
 	var d *dialog.CustomDialog
@@ -29,7 +30,7 @@ func (w *window) pickMaterial(title string, then func(*gems.Material)) {
 		},
 		func(i widget.ListItemID, o fyne.CanvasObject) {
 			if i < len(shown) {
-				o.(*widget.Label).SetText(materialLine(shown[i]))
+				o.(*widget.Label).SetText(materialLine(w.words, shown[i]))
 			}
 		})
 	take := func(m *gems.Material) {
@@ -42,9 +43,9 @@ func (w *window) pickMaterial(title string, then func(*gems.Material)) {
 		}
 	}
 	filter := w.newFormEntry()
-	filter.SetPlaceHolder("Type a name: ruby, citrine, glass")
+	filter.SetPlaceHolder(w.words.Say("Type a name: ruby, citrine, glass"))
 	filter.OnChanged = func(text string) {
-		shown = matching(all, text)
+		shown = matching(w.words, all, text)
 		list.UnselectAll()
 		list.Refresh()
 		list.ScrollToTop()
@@ -55,20 +56,20 @@ func (w *window) pickMaterial(title string, then func(*gems.Material)) {
 		}
 	}
 	size := fyne.NewSize(520, min(440, w.win.Canvas().Size().Height-200))
-	d = dialog.NewCustom(title, "Cancel",
+	d = dialog.NewCustom(w.words.Say(title), w.words.Say("Cancel"),
 		container.NewGridWrap(size, container.NewBorder(filter, nil, nil, nil, list)), w.win)
 	w.raise(d)
 	w.win.Canvas().Focus(filter)
 }
 
 // materialLine names a material with its index and density.
-func materialLine(m *gems.Material) string {
-	text := m.Name
+func materialLine(w *words.Words, m *gems.Material) string {
+	text := model.MaterialName(w, m)
 	if n, err := m.Index(gems.LineD); err == nil {
-		text += fmt.Sprintf("   %.3f", n)
+		text += w.Say("   %.3f", n)
 	}
 	if m.Density > 0 {
-		text += fmt.Sprintf("   %.2f g/cm³", m.Density)
+		text += w.Say("   %.2f g/cm³", m.Density)
 	}
 	const most = 4 // names; more would not fit
 	if len(m.Names) > 0 {
@@ -78,14 +79,14 @@ func materialLine(m *gems.Material) string {
 }
 
 // matching returns the materials that a text fits: by key, name, variety or trade name.
-func matching(all []*gems.Material, text string) []*gems.Material {
+func matching(w *words.Words, all []*gems.Material, text string) []*gems.Material {
 	text = strings.ToLower(strings.TrimSpace(text))
 	if text == "" {
 		return all
 	}
 	var found []*gems.Material
 	for _, m := range all {
-		for _, name := range append([]string{m.Key, m.Name}, m.Names...) {
+		for _, name := range append([]string{m.Key, m.Name, model.MaterialName(w, m)}, m.Names...) {
 			if strings.Contains(strings.ToLower(name), text) {
 				found = append(found, m)
 				break

@@ -130,7 +130,7 @@ func (w *window) sampleItems() []*fyne.MenuItem {
 		group.ChildMenu = fyne.NewMenu("")
 		for _, s := range g.Samples {
 			group.ChildMenu.Items = append(group.ChildMenu.Items, fyne.NewMenuItem(s.Label, func() {
-				w.unlessUnsaved("open another plan", func() { w.openSample(s.File) })
+				w.unlessUnsaved("Save them before you open another plan?", func() { w.openSample(s.File) })
 			}))
 		}
 		groups = append(groups, group)
@@ -183,7 +183,7 @@ func (w *window) recentItem(path string) *fyne.MenuItem {
 			w.refreshMenu()
 		})
 	}
-	return fyne.NewMenuItem(label, func() { w.unlessUnsaved("open another plan", func() { w.open(path) }) })
+	return fyne.NewMenuItem(label, func() { w.unlessUnsaved("Save them before you open another plan?", func() { w.open(path) }) })
 }
 
 // undo takes back what is being typed, if anything is, else the last step.

@@ -1,7 +1,6 @@
 package ui
 
 import (
-	"errors"
 	"image/png"
 	"io"
 	"path/filepath"
@@ -15,6 +14,7 @@ import (
 	"pavilight/app/disk"
 	"pavilight/app/drawing"
 	"pavilight/app/model"
+	"pavilight/app/words"
 )
 
 // rayBeside is the second ray of the pane that tells a followed one.
@@ -31,7 +31,7 @@ func (w *window) buildRayBox() *fyne.Container {
 	b.chooser = newChooser(theme.SizeNameText, w.besideItems)
 	b.chooser.tip = tip{w.tips, tipBeside}
 	b.title = newWrapped(theme.ColorNameForeground, theme.SizeNameText)
-	b.list = newRayList(func(int) {}, w.strayKey)
+	b.list = newRayList(w.words, func(int) {}, w.strayKey)
 	tall := func(t *wrapped) fyne.CanvasObject {
 		return container.NewGridWrap(fyne.NewSize(stoneNarrow-24, 2*lineHeight()), t)
 	}
@@ -39,14 +39,14 @@ func (w *window) buildRayBox() *fyne.Container {
 	b.box.Hide()
 	copies := w.tips.button("Copy", nil, tipCopy, func() {
 		if r := w.bench.Look.Ray; r != nil {
-			w.app.Clipboard().SetContent(r.Text())
+			w.app.Clipboard().SetContent(r.Text(w.words))
 			w.report("The ray is on the clipboard, as a table.")
 		}
 	})
 	saves := w.tips.button("Save…", nil, tipDraw, w.saveRay)
 	closes := w.tips.button("Let go", nil, tipLetGo, w.bench.Look.Unfollow)
 	head := container.NewVBox(
-		container.NewHBox(newWord(colourDim, theme.SizeNameText, "Beside it"), b.chooser), tall(w.rayTitle))
+		container.NewHBox(newWord(colourDim, theme.SizeNameText, w.words.Say("Beside it")), b.chooser), tall(w.rayTitle))
 	return container.New(layout.NewCustomPaddedLayout(8, 8, 14, 10), container.NewBorder(head,
 		container.NewGridWithColumns(3, copies, saves, closes), nil, nil, container.NewVScroll(container.NewVBox(w.ray, b.box))))
 }
@@ -57,35 +57,39 @@ func (w *window) besideItems() []*fyne.MenuItem {
 	if r == nil {
 		return nil
 	}
-	none := fyne.NewMenuItem("no other ray", func() { w.bench.Look.FollowBeside(-1) })
+	none := w.item("no other ray", nil, func() { w.bench.Look.FollowBeside(-1) })
 	none.Checked = r.Beside == nil
 	items := []*fyne.MenuItem{none}
 	for j := range columns {
 		if j == r.Column {
 			continue
 		}
-		medium := strings.ToLower(w.bench.Look.Heading(j).Medium)
-		item := fyne.NewMenuItem("the same in "+medium, func() { w.bench.Look.FollowBeside(j) })
+		item := fyne.NewMenuItem(w.sameIn(j), func() { w.bench.Look.FollowBeside(j) })
 		item.Checked = r.Beside != nil && r.Beside.Column == j
 		items = append(items, item)
 	}
 	return items
 }
 
+// sameIn offers the same ray in a column's surrounding.
+func (w *window) sameIn(column int) string {
+	return w.words.Say("the same in %s", w.words.Within(w.bench.Look.Heading(column).Medium))
+}
+
 // showRayLists tells the followed ray and the one beside it.
 func (w *window) showRayLists(r *model.Ray) {
-	w.rayTitle.setText(r.Title())
-	lines, more := r.Lines()
+	w.rayTitle.setText(r.Title(w.words))
+	lines, more := r.Lines(w.words)
 	w.ray.show(lines, more, r.Step)
 	b := &w.beside
 	setVisible(b.box, r.Beside != nil)
 	if r.Beside == nil {
-		b.chooser.setText("no other ray")
+		b.chooser.setText(w.words.Say("no other ray"))
 		return
 	}
-	b.chooser.setText("the same in " + strings.ToLower(w.bench.Look.Heading(r.Beside.Column).Medium))
-	b.title.setText(r.Beside.Title() + " (broken line)")
-	lines, more = r.Beside.Lines()
+	b.chooser.setText(w.sameIn(r.Beside.Column))
+	b.title.setText(w.words.Say("%s (broken line)", r.Beside.Title(w.words)))
+	lines, more = r.Beside.Lines(w.words)
 	b.list.show(lines, more, -2) // no line is picked
 	b.box.Refresh()
 }
@@ -96,14 +100,14 @@ func (w *window) saveRay() {
 	if r == nil {
 		return
 	}
-	page := r.Page(w.bench.Look.Subject.Stone.Name)
+	page := r.Page(w.words, w.bench.Look.Subject.Stone.Name)
 	w.askTarget("Draw the ray as .svg or .png, or tell it as .txt", "The ray cannot be drawn there", "ray.svg",
 		[]string{".svg", ".png", ".txt"}, func(path string) {
-			if err := writeRay(path, page, r.Text()); err != nil {
+			if err := writeRay(path, page, r.Text(w.words)); err != nil {
 				w.explain("The ray was not drawn", err)
 				return
 			}
-			w.report("Drawn as " + path)
+			w.report("Drawn as %s", path)
 			w.tell("drawn")
 		})
 }
@@ -120,7 +124,7 @@ func writeRay(path string, page *drawing.Page, text string) error {
 		},
 	}[strings.ToLower(filepath.Ext(path))]
 	if write == nil {
-		return errors.New(filepath.Base(path) + ": give the file the ending .svg, .png or .txt")
+		return words.Errorf("%s: give the file the ending .svg, .png or .txt", filepath.Base(path))
 	}
 	return disk.Replace(path, write)
 }

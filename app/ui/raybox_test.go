@@ -29,7 +29,7 @@ func TestSecondRayStandsBesideTheFirst(t *testing.T) {
 		t.Error("the second ray is not drawn in the stone")
 	}
 	folder := t.TempDir()
-	page, text := r.bench.Look.Ray.Page("Harbour Eight"), r.bench.Look.Ray.Text()
+	page, text := r.bench.Look.Ray.Page(nil, "Harbour Eight"), r.bench.Look.Ray.Text(nil)
 	for _, name := range []string{"ray.svg", "ray.PNG", "ray.txt"} {
 		if err := writeRay(filepath.Join(folder, name), page, text); err != nil {
 			t.Fatal(err)

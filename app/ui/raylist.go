@@ -10,6 +10,7 @@ import (
 	"fyne.io/fyne/v2/widget"
 
 	"pavilight/app/model"
+	"pavilight/app/words"
 )
 
 // rayList tells a ray bounce by bounce, a line each. The arrow keys step along it.
@@ -18,6 +19,7 @@ type rayList struct {
 
 	pick    func(step int) // -1 for the entry
 	stray   func(*fyne.KeyEvent)
+	words   *words.Words
 	lines   []model.RayLine
 	more    int
 	step    int
@@ -29,8 +31,8 @@ var (
 	_ fyne.Focusable    = (*rayList)(nil)
 )
 
-func newRayList(pick func(step int), stray func(*fyne.KeyEvent)) *rayList {
-	l := &rayList{pick: pick, stray: stray, step: -1}
+func newRayList(in *words.Words, pick func(step int), stray func(*fyne.KeyEvent)) *rayList {
+	l := &rayList{words: in, pick: pick, stray: stray, step: -1}
 	l.ExtendBaseWidget(l)
 	return l
 }
@@ -81,11 +83,11 @@ func (l *rayList) FocusLost() { l.focused = false; l.Refresh() }
 
 // rayColumns are the headings of the list, and where each begins as a share of its width.
 func rayColumns() []struct {
-	heading string
+	heading words.Key
 	at      float32
 } {
 	return []struct {
-		heading string
+		heading words.Key
 		at      float32
 	}{{"", 0}, {"facet", 0.075}, {"angle", 0.3}, {"stays", 0.475}, {"leaves", 0.68}}
 }
@@ -138,7 +140,7 @@ func (r *rayListRenderer) rows() [][]string {
 	var rows [][]string
 	var head []string
 	for _, c := range rayColumns() {
-		head = append(head, c.heading)
+		head = append(head, r.l.words.Say(c.heading))
 	}
 	rows = append(rows, head)
 	for _, line := range r.l.lines {
@@ -149,7 +151,7 @@ func (r *rayListRenderer) rows() [][]string {
 		rows = append(rows, []string{line.Number, line.Facet, line.Angle, line.Stayed, leaves})
 	}
 	if r.l.more > 0 {
-		rows = append(rows, []string{"", "and more, each carrying less", "", "", ""})
+		rows = append(rows, []string{"", r.l.words.Say("and more, each carrying less"), "", "", ""})
 	}
 	return rows
 }

@@ -3,7 +3,6 @@ package ui
 import (
 	"image"
 	"image/color"
-	"strconv"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
@@ -12,6 +11,7 @@ import (
 
 	"pavilight/app/model"
 	"pavilight/app/picture"
+	"pavilight/app/words"
 )
 
 // scaleBar is the scale of a row of maps, from 0 below to 1 or another number above,
@@ -19,14 +19,15 @@ import (
 // for themselves.
 type scaleBar struct {
 	widget.BaseWidget
+	words *words.Words
 	scale model.Scale
 	name  string // of the colour map shown; empty for none
 	strip *canvas.Image
 	marks []float64
 }
 
-func newScaleBar() *scaleBar {
-	s := &scaleBar{strip: &canvas.Image{}}
+func newScaleBar(in *words.Words) *scaleBar {
+	s := &scaleBar{words: in, strip: &canvas.Image{}}
 	s.strip.ScaleMode = canvas.ImageScaleFastest
 	s.ExtendBaseWidget(s)
 	return s
@@ -55,7 +56,7 @@ func (s *scaleBar) numbers() [3]string {
 	if s.scale.Colours == nil {
 		return [3]string{}
 	}
-	write := func(v float64) string { return strconv.FormatFloat(v, 'g', 3, 64) }
+	write := func(v float64) string { return s.words.Say("%.3g", v) }
 	return [3]string{write(s.scale.Most), write(s.scale.Most / 2), "0"}
 }
 

@@ -1,7 +1,6 @@
 package ui
 
 import (
-	"fmt"
 	"image/color"
 
 	"fyne.io/fyne/v2"
@@ -9,6 +8,8 @@ import (
 	"fyne.io/fyne/v2/driver/desktop"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
+
+	"pavilight/app/words"
 )
 
 // stepBar shows the steps of a film side by side, each with the share of the rough that
@@ -16,6 +17,7 @@ import (
 type stepBar struct {
 	widget.BaseWidget
 
+	words   *words.Words
 	names   []string  // the first one is the rough
 	shares  []float64 // 0 to 1
 	now     int
@@ -31,8 +33,8 @@ var (
 	_ desktop.Cursorable = (*stepBar)(nil)
 )
 
-func newStepBar(goTo func(int), stray func(*fyne.KeyEvent)) *stepBar {
-	b := &stepBar{goTo: goTo, stray: stray}
+func newStepBar(in *words.Words, goTo func(int), stray func(*fyne.KeyEvent)) *stepBar {
+	b := &stepBar{words: in, goTo: goTo, stray: stray}
 	b.ExtendBaseWidget(b)
 	return b
 }
@@ -174,7 +176,7 @@ func (r *stepBarRenderer) Refresh() {
 			r.bars[i].FillColor, r.words[i].Color = themed(theme.ColorNamePrimary), themed(theme.ColorNameForeground)
 		}
 		r.words[i].Text, r.words[i].TextSize = b.names[i], theme.CaptionTextSize()
-		r.parts[i].Text, r.parts[i].TextSize, r.parts[i].Color = shareWords(b.shares[i]), theme.CaptionTextSize(), r.words[i].Color
+		r.parts[i].Text, r.parts[i].TextSize, r.parts[i].Color = shareWords(b.words, b.shares[i]), theme.CaptionTextSize(), r.words[i].Color
 	}
 	r.frame.StrokeWidth, r.frame.StrokeColor = 0, color.Transparent
 	if b.focused {
@@ -185,14 +187,14 @@ func (r *stepBarRenderer) Refresh() {
 }
 
 // shareWords writes a share of the rough, small ones too.
-func shareWords(share float64) string {
+func shareWords(w *words.Words, share float64) string {
 	switch {
 	case share <= 0:
 		return "0"
 	case share < 0.001:
-		return "<0.1 %"
+		return w.Say("<%.1f %%", 0.1)
 	case share < 0.1:
-		return fmt.Sprintf("%.1f %%", 100*share)
+		return w.Say("%.1f %%", 100*share)
 	}
-	return fmt.Sprintf("%.0f %%", 100*share)
+	return w.Say("%.0f %%", 100*share)
 }

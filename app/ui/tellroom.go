@@ -1,8 +1,8 @@
 package ui
 
 import (
-	"fmt"
 	"path/filepath"
+	"slices"
 	"strings"
 
 	"fyne.io/fyne/v2"
@@ -16,6 +16,7 @@ import (
 	"pavilight/app/model"
 	"pavilight/app/report"
 	"pavilight/app/version"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/trace"
 )
@@ -42,12 +43,13 @@ func (w *window) buildTellRoom() fyne.CanvasObject {
 	if t.tell == nil {
 		t.tell = model.NewTell(w.do, w.refreshTell, w.bench.MaterialOf)
 	}
+	t.tell.SetWords(w.words)
 	t.pages = w.newPageTurner(func(by int) { t.tell.Turn(t.tell.Page + by) }, t.tell.SetWidth)
 	t.bar = container.NewBorder(nil, nil, nil, t.pages.bar)
 	t.troubles = widget.NewLabel("")
 	t.troubles.Wrapping = fyne.TextWrapWord
 	t.troubles.Selectable = true
-	heading := newWord(theme.ColorNameError, theme.SizeNameSubHeadingText, "There is no report").bold()
+	heading := newWord(theme.ColorNameError, theme.SizeNameSubHeadingText, w.words.Say("There is no report")).bold()
 	t.trouble = container.NewCenter(container.NewGridWrap(fyne.NewSize(480, 300),
 		container.NewBorder(heading, nil, nil, nil, container.NewVScroll(t.troubles))))
 	t.hint = newWrapped(colourDim, theme.SizeNameText)
@@ -63,70 +65,67 @@ func (w *window) buildTellRoom() fyne.CanvasObject {
 // tellWide is the width of the pane of wishes.
 const tellWide = 300
 
-// languageName returns a language in its own words.
-func languageName(code string) string {
-	if name, ok := map[string]string{"en": "English", "de": "Deutsch", "fr": "Français"}[code]; ok {
-		return name
-	}
-	return code
-}
-
 // tellWishes is the pane that says what the report shall be like.
 func (w *window) tellWishes() fyne.CanvasObject {
 	t := &w.telling
 	change := func(f func(*model.TellWish)) { t.tell.Change(f) }
-	label := func(s string) fyne.CanvasObject { return newWord(colourDim, theme.SizeNameText, s) }
-	heading := func(s string) fyne.CanvasObject {
-		return newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, s).bold()
+	label := func(s words.Key) fyne.CanvasObject { return newWord(colourDim, theme.SizeNameText, w.words.Say(s)) }
+	heading := func(s words.Key) fyne.CanvasObject {
+		return newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, w.words.Say(s)).bold()
 	}
-	row := func(words string, o fyne.CanvasObject) fyne.CanvasObject {
-		return container.New(&formRow{}, label(words), o)
+	row := func(name words.Key, o fyne.CanvasObject) fyne.CanvasObject {
+		return container.New(&formRow{}, label(name), o)
 	}
-	choose := func(options []string, chosen func(k int)) *widget.Select {
+	choose := func(options []string, now int, chosen func(k int)) *widget.Select {
 		s := widget.NewSelect(options, nil)
-		s.SetSelected(options[0])
+		s.SetSelected(options[max(0, now)])
 		s.OnChanged = func(string) { chosen(s.SelectedIndex()) }
 		return s
 	}
-	whom := choose([]string{"a client", "a colleague"}, func(k int) { change(func(w *model.TellWish) { w.Colleague = k == 1 }) })
+	wish := t.tell.Wish
+	reader := 0
+	if wish.Colleague {
+		reader = 1
+	}
+	whom := choose([]string{w.words.Say("a client"), w.words.Say("a colleague")}, reader, func(k int) { change(func(w *model.TellWish) { w.Colleague = k == 1 }) })
 	var languages []string
 	for _, code := range report.Languages() {
-		languages = append(languages, languageName(code))
+		languages = append(languages, words.NameOf(code))
 	}
-	language := choose(languages, func(k int) { change(func(w *model.TellWish) { w.Language = report.Languages()[k] }) })
+	language := choose(languages, slices.Index(report.Languages(), wish.Language), func(k int) { change(func(w *model.TellWish) { w.Language = report.Languages()[k] }) })
 	papers := []string{"a4", "letter"}
-	paper := choose([]string{paperWords("a4"), paperWords("letter")}, func(k int) { change(func(w *model.TellWish) { w.Paper = papers[k] }) })
-	lights := trace.LightNames()
+	paper := choose([]string{w.paperWords("a4"), w.paperWords("letter")}, slices.Index(papers, wish.Paper), func(k int) { change(func(w *model.TellWish) { w.Paper = papers[k] }) })
 	var pictured [2]*widget.Select
 	for k := range pictured {
-		pictured[k] = widget.NewSelect(lights, nil)
-		pictured[k].SetSelected(t.tell.Wish.Lights[k])
-		pictured[k].OnChanged = func(name string) { change(func(w *model.TellWish) { w.Lights[k] = name }) }
+		pictured[k] = w.lightSelect(wish.Lights[k], func(name string) { change(func(w *model.TellWish) { w.Lights[k] = name }) })
 	}
-	entry := func(hint string, set func(*model.TellWish, string)) *widget.Entry {
+	entry := func(hint words.Key, now string, set func(*model.TellWish, string)) *widget.Entry {
 		e := widget.NewEntry()
-		e.SetPlaceHolder(hint)
+		e.SetPlaceHolder(w.words.Say(hint))
+		e.SetText(now)
 		e.OnChanged = func(text string) { change(func(w *model.TellWish) { set(w, text) }) }
 		return e
 	}
-	author := entry("your name", func(w *model.TellWish, s string) { w.Author = s })
-	client := entry("the client's name", func(w *model.TellWish, s string) { w.Client = s })
+	author := entry("your name", wish.Author, func(w *model.TellWish, s string) { w.Author = s })
+	client := entry("the client's name", wish.Client, func(w *model.TellWish, s string) { w.Client = s })
 	notes := widget.NewMultiLineEntry()
-	notes.SetPlaceHolder("notes at the end of the report")
+	notes.SetPlaceHolder(w.words.Say("notes at the end of the report"))
+	notes.SetText(wish.Notes)
 	notes.Wrapping = fyne.TextWrapWord
 	notes.SetMinRowsVisible(3)
 	notes.OnChanged = func(text string) { change(func(w *model.TellWish) { w.Notes = text }) }
 	measured := widget.NewEntry()
-	measured.SetPlaceHolder("crown=0.2, pavilion=0.1")
+	measured.SetPlaceHolder(w.words.Say("crown=%.1f, pavilion=%.1f", 0.2, 0.1))
+	measured.SetText(wish.Measured)
 	measured.OnSubmitted = func(text string) { change(func(w *model.TellWish) { w.Measured = strings.TrimSpace(text) }) }
 	t.letterhead = newChooser(theme.SizeNameText, w.letterheadItems)
-	t.letterhead.setText("none")
+	t.letterhead.setText(w.letterheadWords())
 	t.beside = newChooser(theme.SizeNameText, w.stonesBeside)
 	t.beside.tip = tip{w.tips, tipOther}
-	t.beside.setText("nothing")
-	t.pdf = widget.NewButton("Save as PDF…", func() { w.writeReport(".pdf") })
+	t.beside.setText(w.besideWords())
+	t.pdf = widget.NewButton(w.words.Say("Save as PDF…"), func() { w.writeReport(".pdf") })
 	t.pdf.Importance = widget.HighImportance
-	t.html = widget.NewButton("Save for a browser…", func() { w.writeReport(".html") })
+	t.html = widget.NewButton(w.words.Say("Save for a browser…"), func() { w.writeReport(".html") })
 	t.notes = newWrapped(colourDim, theme.SizeNameCaptionText)
 	wishes := container.New(layout.NewCustomPaddedVBoxLayout(5), heading("Report on this stone"),
 		row("For", whom), row("Language", language), row("Paper", paper), row("Beside it", t.beside),
@@ -134,22 +133,35 @@ func (w *window) tellWishes() fyne.CanvasObject {
 		gap(1), heading("Who tells whom"),
 		row("Letterhead", t.letterhead), row("From", author), row("To", client), notes,
 		gap(1), heading("How exactly it was measured"),
-		newWord(colourDim, theme.SizeNameCaptionText, "standard deviations in degrees; Enter takes them"), measured)
+		newWord(colourDim, theme.SizeNameCaptionText, w.words.Say("standard deviations in degrees; Enter takes them")), measured)
 	foot := container.New(layout.NewCustomPaddedVBoxLayout(6), container.New(&linesLayout{3}, t.notes), t.pdf, t.html)
 	return container.New(layout.NewCustomPaddedLayout(12, 14, 14, 8),
 		container.NewBorder(nil, container.New(layout.NewCustomPaddedLayout(0, 0, 0, 6), foot), nil, nil,
 			container.NewVScroll(container.New(layout.NewCustomPaddedLayout(0, 0, 0, 12), wishes))))
 }
 
+// lightSelect chooses among the lights, by the names that people give them.
+func (w *window) lightSelect(now string, chosen func(name string)) *widget.Select {
+	names := trace.LightNames()
+	var said []string
+	for _, name := range names {
+		said = append(said, w.words.Say(model.LightName(name)))
+	}
+	s := widget.NewSelect(said, nil)
+	s.SetSelectedIndex(slices.Index(names, now))
+	s.OnChanged = func(string) { chosen(names[s.SelectedIndex()]) }
+	return s
+}
+
 // letterheadItems offers a picture at the head of the report.
 func (w *window) letterheadItems() []*fyne.MenuItem {
 	t := &w.telling
 	return []*fyne.MenuItem{
-		fyne.NewMenuItem("none", func() {
-			t.letterhead.setText("none")
+		w.item("none", nil, func() {
 			t.tell.Change(func(w *model.TellWish) { w.Letterhead = "" })
+			t.letterhead.setText(w.letterheadWords())
 		}),
-		fyne.NewMenuItem("A picture…", func() {
+		w.item("A picture…", nil, func() {
 			d := dialog.NewFileOpen(func(r fyne.URIReadCloser, err error) {
 				if err != nil {
 					w.explain("The picture cannot be opened", err)
@@ -160,29 +172,49 @@ func (w *window) letterheadItems() []*fyne.MenuItem {
 				}
 				path := r.URI().Path()
 				r.Close()
-				t.letterhead.setText(filepath.Base(path))
 				t.tell.Change(func(w *model.TellWish) { w.Letterhead = path })
+				t.letterhead.setText(w.letterheadWords())
 			}, w.win)
 			d.SetFilter(storage.NewExtensionFileFilter([]string{".png", ".jpg", ".jpeg", ".gif"}))
-			d.SetTitleText("A picture at the head of the report")
+			d.SetTitleText(w.words.Say("A picture at the head of the report"))
 			w.showFileDialog(d)
 		}),
+	}
+}
+
+// letterheadWords names the picture at the head of the report.
+func (w *window) letterheadWords() string {
+	if path := w.telling.tell.Wish.Letterhead; path != "" {
+		return filepath.Base(path)
+	}
+	return w.words.Say("none")
+}
+
+// besideWords names the stone that is set beside.
+func (w *window) besideWords() string {
+	switch plan := w.telling.tell.Beside; plan {
+	case nil:
+		return w.words.Say("nothing")
+	case w.bench.Doc.First():
+		return w.words.Say("as it was opened")
+	default:
+		return plan.Name
 	}
 }
 
 // stonesBeside offers another stone to set beside.
 func (w *window) stonesBeside() []*fyne.MenuItem {
 	t := &w.telling
-	take := func(words string, plan *facets.Plan) {
-		t.beside.setText(words)
+	take := func(plan *facets.Plan) {
 		t.tell.SetBeside(plan)
+		t.beside.setText(w.besideWords())
 	}
-	before := fyne.NewMenuItem("the plan as it was opened", func() { take("as it was opened", w.bench.Doc.First()) })
+	before := w.item("the plan as it was opened", nil, func() { take(w.bench.Doc.First()) })
 	before.Disabled = w.bench.Doc.First() == w.bench.Doc.Plan()
 	return []*fyne.MenuItem{
-		fyne.NewMenuItem("nothing", func() { take("nothing", nil) }),
+		w.item("nothing", nil, func() { take(nil) }),
 		before,
-		fyne.NewMenuItem("Another plan…", func() {
+		w.item("Another plan…", nil, func() {
 			d := dialog.NewFileOpen(func(r fyne.URIReadCloser, err error) {
 				if err == nil && r == nil {
 					return // cancelled
@@ -197,10 +229,10 @@ func (w *window) stonesBeside() []*fyne.MenuItem {
 					w.explain("The other plan cannot be opened", err)
 					return
 				}
-				take(plan.Name, plan)
+				take(plan)
 			}, w.win)
 			d.SetFilter(storage.NewExtensionFileFilter([]string{".toml"}))
-			d.SetTitleText("The plan to set beside this one")
+			d.SetTitleText(w.words.Say("The plan to set beside this one"))
 			w.showFileDialog(d)
 		}),
 	}
@@ -226,11 +258,11 @@ func (w *window) refreshTell() {
 		t.bar.Refresh() // it had no room while it was hidden
 	}
 	if failed {
-		t.troubles.SetText(strings.Join(model.InWords(t.tell.Trouble), "\n\n"))
+		t.troubles.SetText(strings.Join(model.InWords(w.words, t.tell.Trouble), "\n\n"))
 	}
-	hint := "The light is traced for the report: maps, pictures in true colour, tilts, a wet pavilion and the ray that explains it."
+	hint := w.words.Say("The light is traced for the report: maps, pictures in true colour, tilts, a wet pavilion and the ray that explains it.")
 	if t.tell.Stopped {
-		hint = "Stopped. Go on, at the upper right, traces the light for the report."
+		hint = w.words.Say("Stopped. Go on, at the upper right, traces the light for the report.")
 	}
 	t.hint.setText(hint)
 	enable(t.pdf, t.tell.Ready())
@@ -246,17 +278,17 @@ func (w *window) refreshTell() {
 }
 
 // at is what the room is at, for the header.
-func (t *tellBench) at() runState {
+func (t *tellBench) at(w *words.Words) runState {
 	s := runState{share: t.tell.Done, active: t.tell.Running, stopped: t.tell.Stopped}
 	switch {
 	case t.tell.Running:
-		s.words = fmt.Sprintf("tracing the report %.0f %%", 100*t.tell.Done)
+		s.words = w.Say("tracing the report %.0f %%", 100*t.tell.Done)
 	case t.tell.Trouble != nil:
-		s.words = "no report"
+		s.words = w.Say("no report")
 	case t.tell.Stopped:
-		s.words = "stopped"
+		s.words = w.Say("stopped")
 	case t.tell.Pages() > 0:
-		s.words = fmt.Sprintf("%d pages, as they are printed", t.tell.Pages())
+		s.words = w.Say("%d pages, as they are printed", t.tell.Pages())
 	}
 	return s
 }
@@ -273,6 +305,6 @@ func (w *window) writeReportTo(path string) {
 			w.explain("The report was not written", err)
 			return
 		}
-		w.report("Written to " + path)
+		w.report("Written to %s", path)
 	})
 }

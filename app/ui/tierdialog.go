@@ -9,6 +9,7 @@ import (
 	"fyne.io/fyne/v2/widget"
 
 	"pavilight/app/model"
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
@@ -24,10 +25,10 @@ type tierDialog struct {
 // the reason told in it.
 func (w *window) askTier(title string, form model.TierForm, take func(model.TierForm) error) {
 	t := &tierDialog{}
-	entry := func(text, hint string) *formEntry {
+	entry := func(text string, hint words.Key) *formEntry {
 		e := w.newFormEntry()
 		e.SetText(text)
-		e.SetPlaceHolder(hint)
+		e.SetPlaceHolder(w.words.Say(hint))
 		return e
 	}
 	t.name = entry(form.Name, "P3")
@@ -39,22 +40,24 @@ func (w *window) askTier(title string, form model.TierForm, take func(model.Tier
 	t.note = entry(form.Note, "")
 	var sides, rules []string
 	for _, s := range sideOrder() {
-		sides = append(sides, sideName(s))
+		sides = append(sides, w.words.Say(model.SideName(s)))
 	}
 	for _, r := range model.Rules() {
-		rules = append(rules, model.RuleWords(r))
+		rules = append(rules, w.words.Say(model.RuleWords(r)))
 	}
 	t.side = widget.NewSelect(sides, nil)
-	t.side.SetSelected(sideName(form.Side))
+	t.side.SetSelected(w.words.Say(model.SideName(form.Side)))
 	t.rule = widget.NewSelect(rules, nil)
-	t.rule.SetSelected(model.RuleWords(form.Rule))
-	t.mirror = widget.NewCheck("and mirrored", nil)
+	t.rule.SetSelected(w.words.Say(model.RuleWords(form.Rule)))
+	t.mirror = widget.NewCheck(w.words.Say("and mirrored"), nil)
 	t.mirror.Checked = form.Mirror
-	t.temporary = widget.NewCheck("later tiers may take it off", nil)
+	t.temporary = widget.NewCheck(w.words.Say("later tiers may take it off"), nil)
 	t.temporary.Checked = form.Temporary
 	t.wrong = newWrapped(theme.ColorNameError, theme.SizeNameText)
 
-	label := func(text string) fyne.CanvasObject { return newWord(colourDim, theme.SizeNameText, text) }
+	label := func(text words.Key) fyne.CanvasObject {
+		return newWord(colourDim, theme.SizeNameText, w.words.Say(text))
+	}
 	narrowEntry := func(e *formEntry) fyne.CanvasObject {
 		return container.NewGridWrap(fyne.NewSize(70, e.MinSize().Height), e)
 	}
@@ -73,7 +76,7 @@ func (w *window) askTier(title string, form model.TierForm, take func(model.Tier
 	d := dialog.NewCustomWithoutButtons(title, container.NewVScroll(body), w.win)
 	done := func() {
 		if err := take(t.form()); err != nil {
-			t.wrong.setText(err.Error())
+			t.wrong.setText(w.words.Error(err))
 			return
 		}
 		d.Hide()
@@ -81,9 +84,9 @@ func (w *window) askTier(title string, form model.TierForm, take func(model.Tier
 	for _, e := range []*formEntry{t.name, t.angle, t.index, t.fold, t.stop, t.with, t.note} {
 		e.OnSubmitted = func(string) { done() }
 	}
-	ok := widget.NewButton("Take it", done)
+	ok := widget.NewButton(w.words.Say("Take it"), done)
 	ok.Importance = widget.HighImportance
-	d.SetButtons([]fyne.CanvasObject{widget.NewButton("Cancel", d.Hide), ok})
+	d.SetButtons([]fyne.CanvasObject{widget.NewButton(w.words.Say("Cancel"), d.Hide), ok})
 	d.Resize(fyne.NewSize(520, min(560, w.win.Canvas().Size().Height-60)))
 	w.raise(d)
 	w.win.Canvas().Focus(t.name)
@@ -120,7 +123,7 @@ func (w *window) editTier() {
 		return
 	}
 	before := w.bench.Doc.Plan().Tiers[i]
-	w.askTier("Tier "+before.Name, model.FormOf(&before), func(f model.TierForm) error {
+	w.askTier(w.words.Say("Tier %s", before.Name), model.FormOf(w.words, &before), func(f model.TierForm) error {
 		return w.selecting(f.Name, w.bench.EditTier(i, f))
 	})
 }
@@ -136,7 +139,7 @@ func (w *window) addTier() {
 	if form.Side == facets.Table { // a second table makes no sense
 		form.Side = facets.Crown
 	}
-	w.askTier("New tier, cut after "+tiers[i].Name, form, func(f model.TierForm) error {
+	w.askTier(w.words.Say("New tier, cut after %s", tiers[i].Name), form, func(f model.TierForm) error {
 		return w.selecting(f.Name, w.bench.InsertTier(i+1, f))
 	})
 }

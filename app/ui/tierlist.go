@@ -43,10 +43,6 @@ func sideOrder() []facets.Side {
 	return []facets.Side{facets.Table, facets.Crown, facets.Girdle, facets.Pavilion}
 }
 
-func sideName(s facets.Side) string {
-	return [...]string{facets.Pavilion: "Pavilion", facets.Girdle: "Girdle", facets.Crown: "Crown", facets.Table: "Table"}[s]
-}
-
 // shapeOf tells what makes the list be built anew: names, sides and what can be set.
 func shapeOf(rows []model.TierRow) []string {
 	shape := make([]string, len(rows))
@@ -82,7 +78,7 @@ func (l *tierList) build(rows []model.TierRow) {
 			if !heading {
 				heading = true
 				l.box.Add(container.New(layout.NewCustomPaddedLayout(8, 1, 8, 0),
-					newWord(colourDim, theme.SizeNameCaptionText, sideName(side)).bold()))
+					newWord(colourDim, theme.SizeNameCaptionText, l.bench.Words().Say(model.SideName(side))).bold()))
 			}
 			r := newTierRow(l, row)
 			l.rows = append(l.rows, r)
@@ -134,7 +130,7 @@ func newTierRow(l *tierList, row model.TierRow) *tierRow {
 	}
 	pick := func() { l.bench.Select(r.row.Name) }
 	if row.Slides {
-		r.field = newNumberField(readDegrees, writeDegrees, 0.1)
+		r.field = newNumberField(readDegrees, l.writeDegrees, 0.1)
 		r.field.commit = func(v float64) error {
 			return l.bench.SetAngle(r.number, facets.Angle(v)*facets.Degree, false)
 		}
@@ -159,7 +155,11 @@ func readDegrees(text string) (float64, error) {
 	return a.Degrees(), err
 }
 
-func writeDegrees(v float64) string { return model.FormatAngle(facets.Angle(v) * facets.Degree) }
+func (w *window) writeDegrees(v float64) string { return w.list.writeDegrees(v) }
+
+func (l *tierList) writeDegrees(v float64) string {
+	return l.bench.Words().Decimal(model.FormatAngle(facets.Angle(v) * facets.Degree))
+}
 
 func (r *tierRow) show(row model.TierRow, selected bool) {
 	mark := selected != r.selected
@@ -177,7 +177,7 @@ func (r *tierRow) show(row model.TierRow, selected bool) {
 		r.slider.show(row.Low.Degrees(), row.High.Degrees(), row.Angle.Degrees(), ticks)
 	}
 	if !row.Slides {
-		r.fixed.setText(fixedAngle(row))
+		r.fixed.setText(r.list.fixedAngle(row))
 	}
 	if mark {
 		r.Refresh()
@@ -185,15 +185,15 @@ func (r *tierRow) show(row model.TierRow, selected bool) {
 }
 
 // fixedAngle writes an angle that cannot be set.
-func fixedAngle(row model.TierRow) string {
+func (l *tierList) fixedAngle(row model.TierRow) string {
 	deg := row.Angle.Degrees()
 	switch {
 	case math.IsNaN(deg):
-		return "angle not found"
+		return l.bench.Words().Say("angle not found")
 	case row.Own:
-		return writeDegrees(deg) + "°"
+		return l.writeDegrees(deg) + "°"
 	}
-	return writeDegrees(math.Round(deg*100)/100) + "°, found"
+	return l.bench.Words().Say("%s°, found", l.writeDegrees(math.Round(deg*100)/100))
 }
 
 // Tapped selects the tier.

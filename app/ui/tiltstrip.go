@@ -214,7 +214,7 @@ func (r *tiltStripRenderer) Refresh() {
 		r.names[j].Text, r.names[j].TextSize = "", theme.CaptionTextSize()
 		r.names[j].Color = themed(colourDim)
 		if s.strip != nil && j < len(s.strip.Around) {
-			r.names[j].Text = s.strip.Around[j].Medium.Key
+			r.names[j].Text = s.look.NameOf(s.strip.Around[j].Medium)
 		}
 	}
 	r.frame.StrokeWidth, r.frame.StrokeColor = 0, color.Transparent

@@ -1,9 +1,11 @@
 package ui
 
 import (
-	"errors"
 	"fmt"
 	"image"
+	"math"
+	"path/filepath"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -45,6 +47,7 @@ type tuneBench struct {
 	checks  []*widget.Check
 	fields  [][2]*numberField
 	record  *widget.Check
+	lit     string // name of the light
 	begin   *widget.Button
 
 	// the answer
@@ -69,8 +72,10 @@ func (w *window) buildTuneRoom() fyne.CanvasObject {
 	if t.tune == nil {
 		t.tune = model.NewTune(w.do, w.refreshTune)
 	}
+	t.tune.SetWords(w.words)
+	t.seenIn, t.shape = "", ""
 	question := w.tuneQuestion()
-	t.begin = widget.NewButton("Search", w.beginTune)
+	t.begin = widget.NewButton(w.words.Say("Search"), w.beginTune)
 	t.begin.Importance = widget.HighImportance
 	left := pane(container.New(layout.NewCustomPaddedLayout(12, 12, 14, 8),
 		container.NewBorder(nil, container.New(layout.NewCustomPaddedLayout(8, 0, 0, 6), t.begin), nil, nil, container.NewVScroll(question))))
@@ -79,58 +84,56 @@ func (w *window) buildTuneRoom() fyne.CanvasObject {
 	return t.box
 }
 
-func goalWords(m tune.Measure) string {
+func (w *window) goalWords(m tune.Measure) string {
 	if m == tune.HeadShade {
-		return "least shade of the head"
+		return w.words.Say("least shade of the head")
 	}
 	if m.Better() < 0 {
-		return "least " + m.Name()
+		return w.words.Say("least %s", model.MeasureName(m))
 	}
-	return "most " + m.Name()
+	return w.words.Say("most %s", model.MeasureName(m))
 }
 
 // tuneQuestion is the pane that asks.
 func (w *window) tuneQuestion() fyne.CanvasObject {
 	t := &w.tuning
-	label := func(s string) fyne.CanvasObject { return newWord(colourDim, theme.SizeNameText, s) }
-	heading := func(s string) fyne.CanvasObject {
-		return newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, s).bold()
+	label := func(s words.Key) fyne.CanvasObject { return newWord(colourDim, theme.SizeNameText, w.words.Say(s)) }
+	heading := func(s words.Key) fyne.CanvasObject {
+		return newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, w.words.Say(s)).bold()
 	}
 	column := func(o ...fyne.CanvasObject) *fyne.Container {
 		return container.New(layout.NewCustomPaddedVBoxLayout(4), o...)
 	}
-	row := func(words string, o fyne.CanvasObject) *fyne.Container {
-		return container.New(&formRow{}, label(words), o)
+	row := func(name words.Key, o fyne.CanvasObject) *fyne.Container {
+		return container.New(&formRow{}, label(name), o)
 	}
 	var tasks []string
 	for _, task := range model.TuneTasks() {
-		tasks = append(tasks, task.String())
+		tasks = append(tasks, w.words.Say(task.Name()))
 	}
 	task := widget.NewSelect(tasks, nil)
-	task.SetSelected(tasks[0])
-	task.OnChanged = func(chosen string) {
-		for _, one := range model.TuneTasks() {
-			if one.String() == chosen {
-				t.tune.Ask(one)
-			}
-		}
-	}
+	task.SetSelectedIndex(slices.Index(model.TuneTasks(), t.tune.Task))
+	task.OnChanged = func(string) { t.tune.Ask(model.TuneTasks()[task.SelectedIndex()]) }
 
-	const none = "nothing else"
-	var words []string
+	none := w.words.Say("nothing else")
+	var goals []string
 	for _, m := range tune.Measures() {
-		words = append(words, goalWords(m))
+		goals = append(goals, w.goalWords(m))
 	}
-	first, second := widget.NewSelect(words, nil), widget.NewSelect(append([]string{none}, words...), nil)
-	first.SetSelected(words[0])
+	first, second := widget.NewSelect(goals, nil), widget.NewSelect(append([]string{none}, goals...), nil)
+	first.SetSelected(w.goalWords(t.tune.Aims[0].Measure))
 	second.SetSelected(none)
-	counts := newNumberField(func(s string) (float64, error) { return model.ParseNumber(s, "") }, plainNumber, 0.1)
+	counts := newNumberField(func(s string) (float64, error) { return model.ParseNumber(s, "") }, w.plainNumber, 0.1)
 	weight := 1.0
+	if len(t.tune.Aims) == 2 {
+		second.SetSelected(w.goalWords(t.tune.Aims[1].Measure))
+		weight = math.Abs(t.tune.Aims[1].Weight)
+	}
 	aims := func() {
 		var list []tune.Aim
 		for k, chosen := range []string{first.Selected, second.Selected} {
 			for _, m := range tune.Measures() {
-				if goalWords(m) == chosen {
+				if w.goalWords(m) == chosen {
 					list = append(list, tune.Aim{Measure: m, Weight: m.Better() * []float64{1, weight}[k]})
 				}
 			}
@@ -141,7 +144,7 @@ func (w *window) tuneQuestion() fyne.CanvasObject {
 	second.OnChanged = func(string) { aims() }
 	counts.commit = func(v float64) error {
 		if !(v > 0 && v <= 1000) {
-			return errors.New("the second goal counts more than 0 and at most 1000 times")
+			return words.Errorf("the second goal counts more than 0 and at most 1000 times")
 		}
 		weight = v
 		aims()
@@ -150,62 +153,74 @@ func (w *window) tuneQuestion() fyne.CanvasObject {
 	counts.trouble = w.say
 	counts.show(weight)
 	t.other = row("counting", container.NewBorder(nil, nil, nil, label("times"), counts))
-	light := widget.NewSelect(trace.LightNames(), nil)
-	light.SetSelected("even")
-	light.OnChanged = func(name string) {
+	if t.lit == "" {
+		t.lit = "even"
+	}
+	light := w.lightSelect(t.lit, func(name string) {
 		l, err := trace.FindLight(name)
 		w.say(err)
 		if name == "even" {
 			l = nil
 		}
-		t.tune.Light = l
-	}
+		t.tune.Light, t.lit = l, name
+	})
 	t.light = row("Light", light)
 	t.goals = column(heading("What it shall be good at"), row("First", first), row("And", second), t.other, t.light)
 
 	t.seen = container.New(layout.NewCustomPaddedVBoxLayout(0))
-	rocked := widget.NewCheck("also rocked by 10° either way", func(on bool) {
+	rocked := widget.NewCheck(w.words.Say("also rocked by 10° either way"), nil)
+	rocked.Checked = len(t.tune.Tilts) > 1
+	rocked.OnChanged = func(on bool) {
 		t.tune.Tilts = []facets.Angle{0}
 		if on {
 			t.tune.Tilts = []facets.Angle{0, 10 * facets.Degree, -10 * facets.Degree}
 		}
-	})
-	t.worst = widget.NewCheck("judged by the worst of these", func(on bool) { t.tune.Worst = on })
+	}
+	t.worst = widget.NewCheck(w.words.Say("judged by the worst of these"), nil)
+	t.worst.Checked = t.tune.Worst
+	t.worst.OnChanged = func(on bool) { t.tune.Worst = on }
 	t.toName = newChooser(theme.SizeNameText, nil)
-	t.toName.setText("choose…")
+	t.toName.setText(w.words.Say("choose…"))
+	if t.tune.To != nil {
+		t.toName.setText(model.MaterialName(w.words, t.tune.To))
+	}
 	t.toName.opens = func() {
 		w.pickMaterial("What to cut it of", func(m *gems.Material) {
-			t.toName.setText(m.Name)
+			t.toName.setText(model.MaterialName(w.words, m))
 			t.tune.To = m
 		})
 	}
 	t.to = row("Material", t.toName)
 	t.choices = container.New(layout.NewCustomPaddedVBoxLayout(3))
 	t.vary = column(heading("What may vary"),
-		newWord(colourDim, theme.SizeNameCaptionText, "ticked tiers, between these limits; corners are kept"), t.choices)
+		newWord(colourDim, theme.SizeNameCaptionText, w.words.Say("ticked tiers, between these limits; corners are kept")), t.choices)
 	t.limits = column(append([]fyne.CanvasObject{heading("Limits of the lap")}, w.limitRows(row)...)...)
 	t.slips = column(append([]fyne.CanvasObject{heading("Errors of machine and hand"),
-		newWord(colourDim, theme.SizeNameCaptionText, tune.UsualMachineSource+"; yours may be others")}, w.slipRows(row)...)...)
-	t.record = widget.NewCheck("keep a record to go on from", w.chooseRecord)
+		newWord(colourDim, theme.SizeNameCaptionText, w.words.Say("%s; yours may be others", model.MachineSource))}, w.slipRows(row)...)...)
+	t.record = widget.NewCheck(w.recordWords(), nil)
+	t.record.Checked = t.tune.KeepFile != ""
+	t.record.OnChanged = w.chooseRecord
 	return container.New(layout.NewCustomPaddedLayout(0, 0, 0, 12), container.New(layout.NewCustomPaddedVBoxLayout(10),
 		task, t.to, t.goals, column(heading("Seen in"), t.seen, rocked, t.worst), t.vary, t.limits, t.slips, t.record))
 }
 
-func plainNumber(v float64) string { return strconv.FormatFloat(v, 'g', 6, 64) }
+func (w *window) plainNumber(v float64) string {
+	return w.words.Decimal(strconv.FormatFloat(v, 'g', 6, 64))
+}
 
 // limitRows are the fields of the limits; an empty one demands nothing.
-func (w *window) limitRows(row func(string, fyne.CanvasObject) *fyne.Container) (rows []fyne.CanvasObject) {
+func (w *window) limitRows(row func(words.Key, fyne.CanvasObject) *fyne.Container) (rows []fyne.CanvasObject) {
 	t := &w.tuning
 	l := &t.tune.Limits
 	for _, f := range []struct {
-		name, unit string
+		name, unit words.Key
 		value      *float64
 		most, step float64
 	}{
 		{"Facets from", "mm wide", &l.LeastFacetMM, 100, 0.05},
 		{"Girdle from", "mm thick", &l.GirdleMM, 100, 0.05},
-		{"Depth to", "% of width", &l.MostDepthPercent, 500, 1},
-		{"Crown to", "% of width", &l.MostCrownPercent, 500, 1},
+		{"Depth to", "%% of width", &l.MostDepthPercent, 500, 1},
+		{"Crown to", "%% of width", &l.MostCrownPercent, 500, 1},
 		{"Weight from", "ct", &l.LeastCarats, 1e5, 0.1},
 		{"Mains over", "° past critical", nil, 45, 0.5},
 		{"Others over", "° past critical", nil, 45, 0.5},
@@ -224,7 +239,7 @@ func (w *window) limitRows(row func(string, fyne.CanvasObject) *fyne.Container) 
 }
 
 // limitRow is one number with its unit; an empty field is 0.
-func (w *window) limitRow(row func(string, fyne.CanvasObject) *fyne.Container, name, unit string, get func() float64, set func(float64),
+func (w *window) limitRow(row func(words.Key, fyne.CanvasObject) *fyne.Container, name, unit words.Key, get func() float64, set func(float64),
 	most, step float64) fyne.CanvasObject {
 	field := newNumberField(func(s string) (float64, error) {
 		if strings.TrimSpace(s) == "" {
@@ -235,12 +250,12 @@ func (w *window) limitRow(row func(string, fyne.CanvasObject) *fyne.Container, n
 		if v == 0 {
 			return ""
 		}
-		return plainNumber(v)
+		return w.plainNumber(v)
 	}, step)
 	field.SetPlaceHolder("–")
 	field.commit = func(v float64) error {
 		if !(v >= 0 && v <= most) {
-			return fmt.Errorf("%s: use 0 to %g", strings.ToLower(name), most)
+			return words.Errorf("%s: use 0 to %g", name, most)
 		}
 		set(v)
 		return nil
@@ -248,11 +263,11 @@ func (w *window) limitRow(row func(string, fyne.CanvasObject) *fyne.Container, n
 	field.trouble = w.say
 	field.show(get())
 	return row(name, container.NewBorder(nil, nil, container.NewGridWrap(fyne.NewSize(74, field.MinSize().Height), field), nil,
-		newLine(colourDim, theme.SizeNameText).with(unit)))
+		newLine(colourDim, theme.SizeNameText).with(w.words.Say(unit))))
 }
 
 // slipRows are the fields of the errors.
-func (w *window) slipRows(row func(string, fyne.CanvasObject) *fyne.Container) (rows []fyne.CanvasObject) {
+func (w *window) slipRows(row func(words.Key, fyne.CanvasObject) *fyne.Container) (rows []fyne.CanvasObject) {
 	m := &w.tuning.tune.Machine
 	angle := func(a *facets.Angle) (func() float64, func(float64)) {
 		return func() float64 { return a.Degrees() }, func(v float64) { *a = facets.Angle(v) * facets.Degree }
@@ -260,7 +275,7 @@ func (w *window) slipRows(row func(string, fyne.CanvasObject) *fyne.Container) (
 	length := func(x *float64) (func() float64, func(float64)) {
 		return func() float64 { return *x }, func(v float64) { *x = v }
 	}
-	add := func(name, unit string, get func() float64, set func(float64), step float64) {
+	add := func(name, unit words.Key, get func() float64, set func(float64), step float64) {
 		rows = append(rows, w.limitRow(row, name, unit, get, set, 10, step))
 	}
 	get, set := angle(&m.DopTilt)
@@ -288,12 +303,12 @@ func (w *window) tuneAnswer() fyne.CanvasObject {
 	}
 	t.before, t.after = picture(), picture()
 	var sides []fyne.CanvasObject
-	for k, name := range []string{"As it stands", "The best so far"} {
+	for k, name := range []words.Key{"As it stands", "The best so far"} {
 		t.numbers[k] = newWrapped(theme.ColorNameForeground, theme.SizeNameText)
-		sides = append(sides, container.NewBorder(newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, name).bold(),
+		sides = append(sides, container.NewBorder(newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, w.words.Say(name)).bold(),
 			container.New(&linesLayout{2}, t.numbers[k]), nil, nil, []*canvas.Image{t.before, t.after}[k]))
 	}
-	legend := newWord(colourDim, theme.SizeNameCaptionText, "The pictures show light return in the first surrounding, from 0, dark, to 1, bright, as in Look.")
+	legend := newWord(colourDim, theme.SizeNameCaptionText, w.words.Say("The pictures show light return in the first surrounding, from 0, dark, to 1, bright, as in Look."))
 	t.pair = container.New(layout.NewCustomPaddedLayout(14, 10, 16, 8),
 		container.NewBorder(nil, legend, nil, nil, container.New(&pairLayout{}, sides...)))
 	t.chart = newPageView(nil, w.strayKey)
@@ -314,11 +329,11 @@ func (w *window) tuneAnswer() fyne.CanvasObject {
 	t.verdict = widget.NewLabel("")
 	t.verdict.Wrapping = fyne.TextWrapWord
 	t.verdict.Selectable = true
-	t.take = widget.NewButton("Take it into the plan", w.takeTuned)
-	words := container.New(layout.NewCustomPaddedLayout(14, 12, 8, 14), container.NewBorder(t.title, t.take, nil, nil,
+	t.take = widget.NewButton(w.words.Say("Take it into the plan"), w.takeTuned)
+	told := container.New(layout.NewCustomPaddedLayout(14, 12, 8, 14), container.NewBorder(t.title, t.take, nil, nil,
 		container.NewVScroll(container.New(layout.NewCustomPaddedVBoxLayout(8), gap(1), t.changes.box,
 			container.New(layout.NewCustomPaddedLayout(-6, 0, -6, 0), t.verdict)))))
-	return container.New(&rightLayout{width: filmWords}, container.NewStack(t.hinted, t.pair, t.chart.scroll), words)
+	return container.New(&rightLayout{width: filmWords}, container.NewStack(t.hinted, t.pair, t.chart.scroll), told)
 }
 
 // enterTune takes the plan as it stands, and how it is looked at.
@@ -342,12 +357,20 @@ func (w *window) beginTune() {
 	t.tune.Begin()
 }
 
+// recordWords offers to keep a record, or names the one that is kept.
+func (w *window) recordWords() string {
+	if path := w.tuning.tune.KeepFile; path != "" {
+		return w.words.Say("record: %s", filepath.Base(path))
+	}
+	return w.words.Say("keep a record to go on from")
+}
+
 // chooseRecord asks for the file that remembers what was seen, or forgets it.
 func (w *window) chooseRecord(on bool) {
 	t := &w.tuning
 	if !on {
 		t.tune.KeepFile = ""
-		t.record.SetText("keep a record to go on from")
+		t.record.SetText(w.recordWords())
 		return
 	}
 	if t.tune.KeepFile != "" {
@@ -363,10 +386,10 @@ func (w *window) chooseRecord(on bool) {
 		}
 		t.tune.KeepFile = f.URI().Path()
 		f.Close() // nothing was opened: see writeLater
-		t.record.SetText("record: " + f.URI().Name())
+		t.record.SetText(w.recordWords())
 	}, w.win)
 	d.SetFileName(strings.TrimSuffix(w.bench.Doc.FileName(), ".toml") + "-tune.jsonl")
-	d.SetTitleText("Keep a record of what was seen")
+	d.SetTitleText(w.words.Say("Keep a record of what was seen"))
 	w.showFileDialog(d)
 }
 
@@ -379,7 +402,7 @@ func (w *window) takeTuned() {
 	}
 	name := words.Later("tuned angles")
 	if t.tune.Moved != nil {
-		name = words.Later("move to %s", t.tune.Moved.To.Name)
+		name = words.Later("move to %s", model.MaterialName(w.words, t.tune.Moved.To))
 	}
 	w.bench.Adopt(name, plan)
 	w.enter(lookRoom)
@@ -392,14 +415,14 @@ func (w *window) refreshTune() {
 		return
 	}
 	w.showQuestion()
-	label := map[model.TuneTask]string{model.ShowField: "Show the field", model.TellErrors: "Try the errors out"}[t.tune.Task]
-	if label == "" {
-		label = "Search"
+	todo := map[model.TuneTask]words.Key{model.ShowField: "Show the field", model.TellErrors: "Try the errors out"}[t.tune.Task]
+	if todo == "" {
+		todo = "Search"
 	}
 	if t.tune.Running {
-		label = "Stop"
+		todo = "Stop"
 	}
-	if t.begin.Text != label {
+	if label := w.words.Say(todo); t.begin.Text != label {
 		t.begin.SetText(label)
 	}
 	_, ok := t.tune.Kept()
@@ -428,10 +451,10 @@ func (w *window) refreshTune() {
 	}
 	hint := taskHint(t.tune.Task)
 	lines := t.tune.Verdict()
-	title := ""
+	title := words.Key("")
 	switch {
 	case t.tune.Trouble != nil:
-		title, lines = "No answer", model.InWords(t.tune.Trouble)
+		title, lines = "No answer", model.InWords(w.words, t.tune.Trouble)
 	case t.tune.Running:
 		title, hint = "So far", "The first look takes a moment."
 	case t.tune.Stopped:
@@ -442,8 +465,8 @@ func (w *window) refreshTune() {
 	case len(lines) > 0:
 		title = "Found"
 	}
-	t.hint.setText(hint)
-	t.title.setText(title)
+	t.hint.setText(w.words.Say(hint))
+	t.title.setText(w.words.Say(title))
 	t.changes.show(t.tune.Changes())
 	if text := strings.Join(lines, "\n\n"); t.verdict.Text != text {
 		t.verdict.SetText(text)
@@ -452,7 +475,7 @@ func (w *window) refreshTune() {
 }
 
 // taskHint says what a question is about, before it was asked.
-func taskHint(task model.TuneTask) string {
+func taskHint(task model.TuneTask) words.Key {
 	switch task {
 	case model.ShowField:
 		return "Tick two tiers. The goal is shown over both angles, coarse first: pick a place by a click and take it into the plan."
@@ -469,10 +492,10 @@ func taskHint(task model.TuneTask) string {
 }
 
 // at is what the room is at, for the header.
-func (t *tuneBench) at() runState {
+func (t *tuneBench) at(w *words.Words) runState {
 	s := runState{share: t.tune.Done, active: t.tune.Running}
 	if t.tune.Running {
-		s.words = fmt.Sprintf("%s %.0f %%", t.tune.Phase, 100*t.tune.Done)
+		s.words = w.Say("%s %.0f %%", t.tune.Phase, 100*t.tune.Done)
 	}
 	return s
 }
@@ -518,11 +541,11 @@ func (w *window) showSeen() {
 	}
 	t.seenIn, t.seen.Objects = names, nil
 	for i, s := range t.tune.Seen {
-		words := strings.ToLower(s.Medium.Name)
+		name := w.words.Within(model.MaterialName(w.words, s.Medium))
 		if s.Dish {
-			words = "a dish of " + words
+			name = w.words.Say("a dish of %s", name)
 		}
-		check := widget.NewCheck(words, nil)
+		check := widget.NewCheck(name, nil)
 		check.Checked = s.Chosen
 		check.OnChanged = func(on bool) { t.tune.SeeIn(i, on) }
 		t.seen.Add(check)
@@ -547,7 +570,7 @@ func (w *window) showChoices() {
 			var pair [2]*numberField
 			for k := range pair {
 				pair[k] = newNumberField(func(s string) (float64, error) { return model.ParseNumber(strings.TrimSuffix(s, "°"), "") },
-					func(v float64) string { return fmt.Sprintf("%.4g", v) }, 0.5)
+					func(v float64) string { return w.words.Say("%.4g", v) }, 0.5)
 				pair[k].commit = func(v float64) error {
 					low, high := t.tune.Choices[i].Low, t.tune.Choices[i].High
 					if k == 0 {
@@ -563,7 +586,7 @@ func (w *window) showChoices() {
 			box := func(f *numberField) fyne.CanvasObject {
 				return container.NewGridWrap(fyne.NewSize(64, f.MinSize().Height), f)
 			}
-			limits := container.NewHBox(box(pair[0]), newWord(colourDim, theme.SizeNameText, "to"), box(pair[1]))
+			limits := container.NewHBox(box(pair[0]), newWord(colourDim, theme.SizeNameText, w.words.Say("to|between two limits")), box(pair[1]))
 			t.choices.Add(container.NewBorder(nil, nil, nil, limits, check))
 		}
 		t.choices.Refresh()

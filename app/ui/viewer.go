@@ -1,11 +1,12 @@
 package ui
 
 import (
-	"fmt"
 	"os/exec"
 	"path/filepath"
 	"runtime"
 	"time"
+
+	"pavilight/app/words"
 )
 
 // openWithSystem has the system open a file with the program that it keeps for its kind.
@@ -21,9 +22,9 @@ func openWithSystem(path string) error {
 	default:
 		command = exec.Command("xdg-open", path)
 	}
-	byHand := fmt.Sprintf("open %s by hand", path)
+	byHand := words.Later("open %s by hand", path)
 	if err := command.Start(); err != nil {
-		return fmt.Errorf("%s, which opens files on this system, cannot be started; %s", filepath.Base(command.Path), byHand)
+		return words.Errorf("%s, which opens files on this system, cannot be started; %s", filepath.Base(command.Path), byHand)
 	}
 	ended := make(chan error, 1)
 	go func() { ended <- command.Wait() }() // ends with the viewer, at the latest
@@ -31,7 +32,7 @@ func openWithSystem(path string) error {
 	select {
 	case err := <-ended:
 		if err != nil {
-			return fmt.Errorf("the system has no program for %s files; %s", filepath.Ext(path), byHand)
+			return words.Errorf("the system has no program for %s files; %s", filepath.Ext(path), byHand)
 		}
 	case <-time.After(patience): // it is the viewer itself that runs
 	}

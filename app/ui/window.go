@@ -1,7 +1,6 @@
 package ui
 
 import (
-	"fmt"
 	"math"
 	"strings"
 
@@ -119,7 +118,7 @@ func (w *window) build() {
 	w.material = newChooser(theme.SizeNameText, nil)
 	w.material.opens = w.chooseMaterial
 	w.width = newNumberField(func(s string) (float64, error) { return model.ParseNumber(s, "mm") },
-		func(v float64) string { return fmt.Sprintf("%.2f", v) }, 0.1)
+		func(v float64) string { return w.words.Say("%.2f", v) }, 0.1)
 	w.width.commit, w.width.trouble = w.bench.SetWidth, w.say
 	w.weight = newWord(colourDim, theme.SizeNameText, "")
 	for r := range rooms {
@@ -138,11 +137,11 @@ func (w *window) build() {
 
 	w.grid = newGrid(w.bench, w.strayKey)
 	w.grid.onPixels = func(px int) { w.bench.Look.Adjust(func(s *trace.Settings) { s.Pixels = px }) }
-	degrees := func(set func(*trace.Settings, facets.Angle), most float64, what string, step float64) *numberField {
-		f := newNumberField(readDegrees, writeDegrees, step)
+	degrees := func(set func(*trace.Settings, facets.Angle), most float64, refused words.Key, step float64) *numberField {
+		f := newNumberField(readDegrees, w.writeDegrees, step)
 		f.commit = func(v float64) error {
 			if !(v >= 0 && v <= most) {
-				return fmt.Errorf("%s goes from 0° to %g°", what, most)
+				return words.Errorf(refused, most)
 			}
 			w.bench.Look.Adjust(func(s *trace.Settings) { set(s, facets.Angle(v)*facets.Degree) })
 			w.refreshLight()
@@ -151,19 +150,19 @@ func (w *window) build() {
 		f.trouble = w.say
 		return f
 	}
-	w.tilt = degrees(func(s *trace.Settings, a facets.Angle) { s.View.Tilt = a }, 80, "the tilt", 1)
+	w.tilt = degrees(func(s *trace.Settings, a facets.Angle) { s.View.Tilt = a }, 80, "the tilt goes from 0° to %g°", 1)
 	w.tilt.read, w.tilt.commit = readTilt, w.setTilt
 	w.grid.reach.trouble = w.say
 	w.grid.onTilt = func(a facets.Angle) { w.say(w.setTilt(a.Degrees())) }
-	w.head = degrees(func(s *trace.Settings, a facets.Angle) { s.Head = a }, 60, "the half-angle of the viewer's head", 1)
+	w.head = degrees(func(s *trace.Settings, a facets.Angle) { s.Head = a }, 60, "the half-angle of the viewer's head goes from 0° to %g°", 1)
 	w.shines = newChooser(theme.SizeNameText, w.lightItems)
 	w.grid.onRow = w.refreshLight
 	w.turn = newNumberField(func(s string) (float64, error) { return model.ParseNumber(s, "") },
-		func(v float64) string { return fmt.Sprintf("%.4g", v) }, 1)
+		func(v float64) string { return w.words.Say("%.4g", v) }, 1)
 	w.turn.commit = func(v float64) error {
 		gear := float64(w.bench.Doc.Plan().Gear)
 		if !(v >= 0 && v <= gear) {
-			return fmt.Errorf("an index goes from 0 to %g on this gear", gear)
+			return words.Errorf("an index goes from 0 to %g on this gear", gear)
 		}
 		w.bench.Look.Adjust(func(s *trace.Settings) { s.View.Turn = facets.Angle(2 * math.Pi * v / gear) })
 		w.refreshLight()
@@ -176,9 +175,9 @@ func (w *window) build() {
 		w.list.reveal(tier)
 	}, w.strayKey)
 	w.facts = newFactTable()
-	w.from = newFromPlot()
+	w.from = newFromPlot(w.words)
 	w.rayTitle = newWrapped(theme.ColorNameForeground, theme.SizeNameText)
-	w.ray = newRayList(w.bench.Look.PickBounce, w.strayKey)
+	w.ray = newRayList(w.words, w.bench.Look.PickBounce, w.strayKey)
 	w.giveTips()
 	w.message = newLine(colourDim, theme.SizeNameCaptionText)
 	w.light = newLine(colourDim, theme.SizeNameCaptionText).aligned(fyne.TextAlignTrailing)
@@ -219,7 +218,7 @@ func readTilt(text string) (float64, error) {
 func (w *window) setTilt(deg float64) error {
 	const most = 80
 	if !(deg >= -most && deg <= most) {
-		return fmt.Errorf("the tilt goes from -%d° to %d°", most, most)
+		return words.Errorf("the tilt goes from -%d° to %d°", most, most)
 	}
 	w.bench.Look.Adjust(func(s *trace.Settings) { s.View.Tilt = facets.Angle(deg) * facets.Degree })
 	w.refreshLight()
@@ -265,10 +264,10 @@ func (w *window) planPane() fyne.CanvasObject {
 
 func (w *window) troubleBox() *fyne.Container {
 	heading := newLine(theme.ColorNameError, theme.SizeNameText).bold()
-	heading.setText("This plan makes no stone")
+	heading.setText(w.words.Say("This plan makes no stone"))
 	warning := widget.NewIcon(theme.NewErrorThemedResource(theme.WarningIcon()))
 	keeps := newLine(colourDim, theme.SizeNameCaptionText)
-	keeps.setText("The maps show the last stone that it made.")
+	keeps.setText(w.words.Say("The maps show the last stone that it made."))
 	scroll := container.NewVScroll(w.troubles)
 	scroll.SetMinSize(fyne.NewSize(100, 110))
 	return container.NewStack(ground(theme.ColorNameInputBackground),
@@ -279,7 +278,7 @@ func (w *window) troubleBox() *fyne.Container {
 
 // lookPane is the middle one: how the stone is looked at, and the grid of maps.
 func (w *window) lookPane() fyne.CanvasObject {
-	word := func(s string) fyne.CanvasObject { return newWord(colourDim, theme.SizeNameText, s) }
+	word := func(s words.Key) fyne.CanvasObject { return newWord(colourDim, theme.SizeNameText, w.words.Say(s)) }
 	field := func(f *numberField) fyne.CanvasObject {
 		return container.NewGridWrap(fyne.NewSize(58, f.MinSize().Height), f)
 	}
@@ -294,16 +293,16 @@ func (w *window) lookPane() fyne.CanvasObject {
 
 // stonePane is the right one: the solid and its measures.
 func (w *window) stonePane() fyne.CanvasObject {
-	pose := func(name, words words.Key, p func() solid.Pose) fyne.CanvasObject {
-		b := w.tips.button(name, nil, words, func() { w.solid.turnTo(p()) })
+	pose := func(name, tip words.Key, p func() solid.Pose) fyne.CanvasObject {
+		b := w.tips.button(name, nil, tip, func() { w.solid.turnTo(p()) })
 		b.Importance = widget.LowImportance
 		return b
 	}
 	poses := container.NewGridWithColumns(4, pose("Table", tipFaceUp, solid.FaceUp), pose("Side", tipSide, solid.Profile),
 		pose("Culet", tipFaceDown, solid.FaceDown), pose("Askew", tipAskew, restingPose))
 	top := container.New(&squareLayout{}, w.solid, poses)
-	whence := newWord(theme.ColorNameForeground, theme.SizeNameText, "Where it comes from").bold()
-	under := newWord(colourDim, theme.SizeNameCaptionText, "share of returned light by angle from the eye")
+	whence := newWord(theme.ColorNameForeground, theme.SizeNameText, w.words.Say("Where it comes from")).bold()
+	under := newWord(colourDim, theme.SizeNameCaptionText, w.words.Say("share of returned light by angle from the eye"))
 	w.factBox = container.NewVScroll(container.New(layout.NewCustomPaddedLayout(8, 8, 14, 10),
 		container.New(layout.NewCustomPaddedVBoxLayout(3), w.facts.box, gap(1), whence, under, w.from)))
 	w.rayBox = w.buildRayBox()
@@ -359,13 +358,13 @@ func (w *window) say(err error) {
 		return
 	}
 	w.message.setColour(theme.ColorNameError)
-	w.message.setText("Not taken: " + err.Error())
+	w.message.setText(w.words.Say("Not taken: %s", err))
 }
 
 // report says what was done.
-func (w *window) report(text string) {
+func (w *window) report(text words.Key, args ...any) {
 	w.message.setColour(colourDim)
-	w.message.setText(text)
+	w.message.setText(w.words.Say(text, args...))
 }
 
 // onLook follows the maps.
@@ -423,12 +422,13 @@ func (w *window) onPlan() {
 		return
 	}
 	plan := w.bench.Doc.Plan()
-	w.title.setText(w.bench.Doc.Title())
-	w.win.SetTitle(w.bench.Doc.Title() + " – Pavilight")
+	title := w.bench.Doc.Title(w.words)
+	w.title.setText(title)
+	w.win.SetTitle(title + " – Pavilight")
 	w.width.show(plan.WidthMM)
 	name := plan.Material.Name
 	if m, err := w.bench.MaterialOf(plan.Material); err == nil {
-		name = m.Name
+		name = model.MaterialName(w.words, m)
 	}
 	w.material.setText(name)
 	w.list.refresh()
@@ -468,7 +468,7 @@ func (w *window) refreshFrom() {
 	var curves [columns][fromBins]float64
 	var names [columns]string
 	for j := range min(columns, len(f.Result.Columns)) {
-		curves[j], names[j] = f.Result.Columns[j].From, f.Around[j].Medium.Key
+		curves[j], names[j] = f.Result.Columns[j].From, w.bench.Look.NameOf(f.Around[j].Medium)
 	}
 	w.from.show(curves, names, f.Settings.Head.Degrees(), true)
 }
@@ -494,7 +494,7 @@ func (w *window) refreshLight() {
 	turn := s.View.Turn.Radians() / (2 * math.Pi) * float64(w.bench.Doc.Plan().Gear)
 	w.turn.show(turn)
 	w.light.setText(w.bench.Look.LightInWords())
-	w.shines.setText(model.LightName(w.bench.Look.Light()))
+	w.shines.setText(w.words.Say(model.LightName(w.bench.Look.Light())))
 	setVisible(w.shining, w.bench.Look.ShowsColour())
 }
 
@@ -502,7 +502,7 @@ func (w *window) refreshLight() {
 func (w *window) lightItems() []*fyne.MenuItem {
 	var items []*fyne.MenuItem
 	for _, name := range model.LightNames() {
-		item := fyne.NewMenuItem(model.LightName(name), func() {
+		item := w.item(model.LightName(name), nil, func() {
 			w.say(w.bench.Look.SetLight(name))
 			w.refreshLight()
 		})
@@ -518,7 +518,7 @@ func (w *window) refreshPointer() {
 		w.report("")
 		return
 	}
-	w.report(fmt.Sprintf("%+.2f mm right, %+.2f mm up from the middle", x, y))
+	w.report("%+.2f mm right, %+.2f mm up from the middle", x, y)
 }
 
 // runState is what a room is at: shown in the header, and what its Stop button ends.
@@ -532,11 +532,11 @@ type runState struct {
 func (w *window) running() runState {
 	switch w.room {
 	case tuneRoom:
-		return w.tuning.at()
+		return w.tuning.at(w.words)
 	case cutRoom:
-		return w.cutting.at()
+		return w.cutting.at(w.words)
 	case tellRoom:
-		return w.telling.at()
+		return w.telling.at(w.words)
 	}
 	p := w.bench.Look.Progress()
 	return runState{w.bench.Look.Status(), p.Share, p.Active, p.Stopped}
@@ -547,9 +547,9 @@ func (w *window) refreshProgress() {
 	w.state.setText(p.words)
 	w.progress.show(p.share)
 	setVisible(w.progress, p.active || p.stopped)
-	text := "Stop"
+	text := w.words.Say("Stop")
 	if p.stopped {
-		text = "Go on"
+		text = w.words.Say("Go on")
 	}
 	if w.stop.Text != text {
 		w.stop.SetText(text)

@@ -7,6 +7,7 @@ package words
 import (
 	"embed"
 	"fmt"
+	"slices"
 	"strings"
 	"time"
 	"unicode"
@@ -116,6 +117,15 @@ func (w *Words) Say(k Key, args ...any) string {
 	return fmt.Sprintf(text, said...)
 }
 
+// Among says a text that comes from a package which speaks English, where it is among keys;
+// another stands as it is.
+func (w *Words) Among(keys []Key, text string) string {
+	if k := Key(text); slices.Contains(keys, k) {
+		return w.Say(k)
+	}
+	return text
+}
+
 // Count says one of two texts, by whether n counts as one thing in the language.
 func (w *Words) Count(n int, one, many Key, args ...any) string {
 	if n == 1 || n == 0 && w.Language() == "fr" {
@@ -191,7 +201,13 @@ func (w *Words) Text(t Text) string {
 // String says it in English.
 func (t Text) String() string { return (*Words)(nil).Text(t) }
 
-// fault is an error that can be told in any language.
+// Telling is an error that can be told in any language.
+type Telling interface {
+	error
+	Saying() Text
+}
+
+// fault is what Errorf makes.
 type fault struct{ Text }
 
 // Errorf returns an error that can be told in any language; what it says of itself is
@@ -199,6 +215,9 @@ type fault struct{ Text }
 func Errorf(k Key, args ...any) error { return &fault{Text{k, args}} }
 
 func (f *fault) Error() string { return f.String() }
+
+// Saying returns what the error says, for any language.
+func (f *fault) Saying() Text { return f.Text }
 
 // Unwrap returns the errors that are filled in.
 func (f *fault) Unwrap() []error {
@@ -211,13 +230,13 @@ func (f *fault) Unwrap() []error {
 	return inner
 }
 
-// Error tells an error in the language, as far as it came from Errorf; "" for nil.
+// Error tells an error in the language, as far as it is one that can be told; "" for nil.
 func (w *Words) Error(err error) string {
 	switch f := err.(type) {
 	case nil:
 		return ""
-	case *fault:
-		return w.Text(f.Text)
+	case Telling:
+		return w.Text(f.Saying())
 	case interface{ Unwrap() []error }: // errors that were joined
 		var lines []string
 		for _, one := range f.Unwrap() {

@@ -27,7 +27,7 @@ func verbs(text string) []string {
 		if m[1] != "" {
 			next, _ = strconv.Atoi(m[1]) // the expression lets digits through only
 		}
-		found = append(found, fmt.Sprintf("%d%s", next, m[2]))
+		found = append(found, fmt.Sprintf("%02d%s", next, m[2]))
 		next++
 	}
 	slices.Sort(found)
