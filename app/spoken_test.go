@@ -29,6 +29,9 @@ type spoken struct {
 	where string
 }
 
+// keyType is the type of the texts.
+const keyType = "pavilight/app/words.Key"
+
 // keysOf returns each constant of type words.Key in the packages of app, and reports texts
 // that are filled in with too few or too many things.
 func keysOf(t *testing.T) []spoken {
@@ -59,7 +62,7 @@ func keysOf(t *testing.T) []spoken {
 		}
 		keyOf := func(e ast.Expr) (string, bool) {
 			tv := info.Types[e]
-			if tv.Value == nil || tv.Type.String() != "pavilight/app/words.Key" {
+			if tv.Value == nil || tv.Type.String() != keyType {
 				return "", false
 			}
 			return constant.StringVal(tv.Value), true
@@ -103,10 +106,13 @@ func checkFilled(t *testing.T, call *ast.CallExpr, info *types.Info, keyOf func(
 		return
 	}
 	texts := s.Params().Len() - 1
-	for _, e := range call.Args[:texts] {
+	for i, e := range call.Args[:texts] {
 		key, ok := keyOf(e)
 		if !ok {
 			continue
+		}
+		if i+1 < texts && s.Params().At(i).Name() == "title" && s.Params().At(i+1).Type().String() == keyType {
+			continue // filled in is the text that follows
 		}
 		verbs := regexp.MustCompile(`%[^a-zA-Z%]*[a-zA-Z]`).FindAllString(strings.ReplaceAll(words.Key(key).English(), "%%", ""), -1)
 		if got, want := len(call.Args)-texts, len(verbs); got != want {
