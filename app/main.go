@@ -25,7 +25,13 @@ func run() int {
 		Stdout:   os.Stdout,
 		Stderr:   os.Stderr,
 		Terminal: isTerminal(os.Stderr),
-		Window:   openWindow,
+		Window: func(ctx context.Context, path string) error {
+			err := openWindow(ctx, path)
+			if err != nil {
+				alarm(err)
+			}
+			return err
+		},
 	})
 }
 

@@ -8,8 +8,12 @@ if not exist "%program%" (
   exit /b 1
 )
 set "classes=HKCU\Software\Classes"
-reg add "%classes%\Pavilight.Plan" /ve /d "Cut plan" /f >nul || exit /b 1
-reg add "%classes%\Pavilight.Plan\DefaultIcon" /ve /d "%program%,0" /f >nul || exit /b 1
-reg add "%classes%\Pavilight.Plan\shell\open\command" /ve /d "\"%program%\" \"%%1\"" /f >nul || exit /b 1
-reg add "%classes%\.toml\OpenWithProgids" /v Pavilight.Plan /t REG_SZ /d "" /f >nul || exit /b 1
+reg add "%classes%\Pavilight.Plan" /ve /d "Cut plan" /f >nul
+if errorlevel 1 exit /b 1
+reg add "%classes%\Pavilight.Plan\DefaultIcon" /ve /d "%program%,0" /f >nul
+if errorlevel 1 exit /b 1
+reg add "%classes%\Pavilight.Plan\shell\open\command" /ve /d "\"%program%\" \"%%1\"" /f >nul
+if errorlevel 1 exit /b 1
+reg add "%classes%\.toml\OpenWithProgids" /v Pavilight.Plan /t REG_SZ /d "" /f >nul
+if errorlevel 1 exit /b 1
 echo Pavilight is offered under "Open with" for .toml files.
