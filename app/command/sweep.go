@@ -347,10 +347,8 @@ func (s *sweeping) inputs() map[string]string {
 	lights := []string{s.line.Look.Light}
 	if s.verb == "tune" {
 		lights = splitList(s.line.Tune.Light)
-		if s.line.Tune.Rough == "plan" && subject.Plan != "" {
-			if plan, err := facets.OpenPlan(subject.Plan); err == nil && plan.Rough != nil && plan.Rough.File != "" {
-				files["rough"] = plan.Rough.File
-			}
+		if rough := s.roughFile(); rough != "" {
+			files["rough"] = rough
 		}
 	}
 	for i, name := range lights {
@@ -359,6 +357,26 @@ func (s *sweeping) inputs() map[string]string {
 		}
 	}
 	return files
+}
+
+// roughFile returns the scan of the rough that tune looks for stones in, "" for none.
+func (s *sweeping) roughFile() string {
+	k := &s.line.Tune
+	if k.Rough == "" {
+		return ""
+	}
+	var plan *facets.Plan
+	if k.Plan != "" {
+		plan, _ = facets.OpenPlan(k.Plan) // faults are the job's to tell
+	}
+	ref, folder, err := k.roughRef(plan)
+	if err != nil || ref.File == "" {
+		return ""
+	}
+	if filepath.IsAbs(ref.File) {
+		return ref.File
+	}
+	return filepath.Join(folder, ref.File)
 }
 
 // fileDigest returns the digest of a file, read once, and a word where there is none.

@@ -6,7 +6,9 @@ import (
 	"encoding/csv"
 	"encoding/json"
 	"errors"
+	"flag"
 	"fmt"
+	"math/rand/v2"
 	"os"
 	"os/exec"
 	"path/filepath"
@@ -219,42 +221,58 @@ func rowsDone(folder string) (n int) {
 	return n
 }
 
-// A shard that is killed half-way goes on to the same bytes.
+var kills = flag.Int("kills", 1, "how often a sweep is killed")
+
+// A shard that is killed, at any moment and as often as may be, goes on to the same bytes.
 func TestSweepKilled(t *testing.T) {
 	sweepFolder(t)
 	args := func(folder string) []string {
 		return []string{"look", "tent.toml", "--over", "tilt=0..29/1", "--in", "air", "--pixels", "100", "--samples", "16", "--workers", "1",
 			"--shard", "1/2", "--out", folder}
 	}
-	if text, err := program(t, args("whole")...).CombinedOutput(); err != nil {
-		t.Fatalf("%v: %s", err, text)
+	finish := func(folder string) string {
+		if text, err := program(t, args(folder)...).CombinedOutput(); err != nil {
+			t.Fatalf("%v: %s", err, text)
+		}
+		if n := rowsDone(folder); n > 0 {
+			t.Errorf("%d rows are left behind", n)
+		}
+		return mustRead(t, filepath.Join(folder, "shard-1-of-2.jsonl"))
 	}
-	killed := program(t, args("parts")...)
-	if err := killed.Start(); err != nil {
-		t.Fatal(err)
-	}
-	for began := time.Now(); rowsDone("parts") < 5; time.Sleep(time.Millisecond) {
-		if time.Since(began) > time.Minute {
-			t.Fatal("5 jobs take more than a minute")
+	want := finish("whole")
+	r := rand.New(rand.NewPCG(1, 1)) // moments differ all the same, as processes do
+	done, outlived := 0, 0
+	for done < *kills {
+		killed := program(t, args("parts")...)
+		if err := killed.Start(); err != nil {
+			t.Fatal(err)
+		}
+		ended := make(chan error, 1)
+		go func() { ended <- killed.Wait() }()
+		before, grow := rowsDone("parts"), 1+r.IntN(4)
+		for began := time.Now(); rowsDone("parts") < before+grow && len(ended) == 0; time.Sleep(time.Millisecond) {
+			if time.Since(began) > time.Minute {
+				t.Fatal("some jobs take more than a minute")
+			}
+		}
+		time.Sleep(time.Duration(r.Int64N(int64(10 * time.Millisecond))))
+		killed.Process.Kill()
+		if err := <-ended; err != nil {
+			done++
+			continue
+		}
+		outlived++ // it was done before it could be killed
+		if got := finish("parts"); got != want {
+			t.Fatalf("after %d kills a shard became another one", done)
+		}
+		if err := os.RemoveAll("parts"); err != nil {
+			t.Fatal(err)
 		}
 	}
-	if err := killed.Process.Kill(); err != nil {
-		t.Fatal(err)
+	if finish("parts") != want {
+		t.Errorf("after %d kills a shard became another one", done)
 	}
-	killed.Wait()
-	const name = "shard-1-of-2.jsonl"
-	if _, err := os.Stat(filepath.Join("parts", name)); !errors.Is(err, os.ErrNotExist) {
-		t.Fatalf("the shard was done before it could be killed: %v", err)
-	}
-	if text, err := program(t, args("parts")...).CombinedOutput(); err != nil {
-		t.Fatalf("%v: %s", err, text)
-	}
-	if mustRead(t, filepath.Join("parts", name)) != mustRead(t, filepath.Join("whole", name)) {
-		t.Error("a shard that was killed became another one")
-	}
-	if n := rowsDone("parts"); n > 0 {
-		t.Errorf("%d rows are left behind", n)
-	}
+	t.Logf("%d kills, %d runs to the end", done, outlived+1)
 }
 
 // A sweep that is stopped says so and keeps what it did; what is printed is all or none.
@@ -297,20 +315,58 @@ func TestSweepOfAPlanThatChanges(t *testing.T) {
 	}
 }
 
-// Files that results depend on make another sweep when they change.
+// Files that results depend on make another sweep when they change: the plan, the scan of
+// the rough that lies beside it, materials of one's own, a panorama.
 func TestSweepKnowsItsFiles(t *testing.T) {
-	sweepFolder(t)
-	shard := listed("--out", "parts", "--shard", "1/2")
-	runCommand(shard...)
-	if err := os.WriteFile("tent.toml", []byte(strings.Replace(small, "40.0", "41.0", 1)), 0o644); err != nil {
-		t.Fatal(err)
+	write := func(name, text string) {
+		t.Helper()
+		if err := os.WriteFile(name, []byte(text), 0o644); err != nil {
+			t.Fatal(err)
+		}
 	}
-	if o := runCommand(shard...); o.status != CommandFault || !strings.Contains(o.stderr, "another sweep") {
-		t.Errorf("status %d: %s", o.status, o.stderr)
-	}
-	runCommand(listed("--out", "parts", "--shard", "2/2")...)
-	if o := runCommand("look", "--merge", "parts"); o.status != InputFault || !strings.Contains(o.stderr, "different sweeps") {
-		t.Errorf("status %d: %s", o.status, o.stderr)
+	materials := "materials = 1\n[[material]]\nkey = \"%s\"\nname = \"Shop glass\"\nindex = 1.6\ndensity = 2.9\nsource = \"measured here\"\n"
+	panorama := "#?RADIANCE\nFORMAT=32-bit_rle_rgbe\n\n-Y 1 +X 2\n%s\x80\x80\x80\x80\x80\x80\x80"
+	look := listed()
+	for _, row := range []struct {
+		name   string
+		args   []string
+		change func()
+	}{
+		{"plan", look, func() { write("tent.toml", strings.Replace(small, "40.0", "41.0", 1)) }},
+		{"rough", []string{"tune", "bench/tent.toml", "--rough", "plan", "--vary", "P=40..41", "--step", "1", "--goal", "weight"}, func() {
+			runCommand("check", "tent.toml", "--solid", "bench/rough.stl", "--width", "12")
+		}},
+		{"materials", append(look, "--materials", "own.toml"), func() { write("own.toml", fmt.Sprintf(materials, "other-glass")) }},
+		{"panorama", append(look, "--light", "sky.hdr"), func() { write("sky.hdr", fmt.Sprintf(panorama, "\x40")) }},
+	} {
+		t.Run(row.name, func(t *testing.T) {
+			sweepFolder(t)
+			if err := os.Mkdir("bench", 0o755); err != nil {
+				t.Fatal(err)
+			}
+			write("bench/tent.toml", strings.Replace(small, "gear = 96", "gear = 96\nrough = { shape = \"scan\", file = \"rough.stl\" }", 1))
+			if o := runCommand("check", "tent.toml", "--solid", "bench/rough.stl", "--width", "10"); o.status != Done {
+				t.Fatal(o.stderr)
+			}
+			write("own.toml", fmt.Sprintf(materials, "shop-glass"))
+			write("sky.hdr", fmt.Sprintf(panorama, "\x80"))
+			shard := func(k string) []string { return append(slices.Clone(row.args), "--out", "parts", "--shard", k) }
+			first := runCommand(shard("1/2")...)
+			if !strings.Contains(first.stdout, "Written") || strings.Contains(first.stderr, "own.toml") || strings.Contains(first.stderr, "sky.hdr") || strings.Contains(first.stderr, "rough") {
+				t.Fatalf("%s%s", first.stdout, first.stderr)
+			}
+			if o := runCommand(shard("1/2")...); !strings.Contains(o.stdout, "Written") {
+				t.Fatalf("the same again: %s", o.stderr)
+			}
+			row.change()
+			if o := runCommand(shard("1/2")...); o.status != CommandFault || !strings.Contains(o.stderr, "another sweep") {
+				t.Errorf("status %d: %s", o.status, o.stderr)
+			}
+			runCommand(shard("2/2")...)
+			if o := runCommand(row.args[0], "--merge", "parts"); o.status != InputFault || !strings.Contains(o.stderr, "different sweeps") {
+				t.Errorf("status %d: %s", o.status, o.stderr)
+			}
+		})
 	}
 }
 

@@ -3,11 +3,9 @@ package command
 import (
 	"fmt"
 	"math"
-	"os"
+	"path/filepath"
 	"strconv"
 	"strings"
-
-	"github.com/go-gl/mathgl/mgl64"
 
 	"pavilight/facets"
 	"pavilight/gems"
@@ -37,7 +35,7 @@ type tuneLimits struct {
 	MostCrown   float64 `name:"most-crown" type:"number" least:"0" most:"500" unit:"percent" placeholder:"P" help:"Greatest crown height, in percent of the width."`
 	LeastCarats float64 `name:"least-carats" type:"number" least:"0" most:"100000" unit:"ct" placeholder:"CT" help:"Least weight of the finished stone."`
 	LeastYield  float64 `name:"least-yield" type:"number" least:"0" most:"100" unit:"percent" placeholder:"P" help:"Least weight in percent of the rough's; needs --rough."`
-	Rough       string  `type:"word" placeholder:"SHAPE:MM" help:"Cut the largest stone from this rough: box:10x8x7, cylinder:DIAMETERxHEIGHT, ellipsoid:AxBxC in mm, or plan for what the plan says."`
+	Rough       string  `type:"word" placeholder:"SHAPE:MM" help:"Cut the largest stone from this rough: box:10x8x7, cylinder:DIAMETERxHEIGHT, ellipsoid:AxBxC in mm, scan:FILE, or plan for what the plan says."`
 	KeepRatio   float64 `name:"keep-ratio" default:"1" type:"number" least:"0" most:"100" unit:"percent" placeholder:"P" help:"Length over width changes by no more, 0 to 100 percent; 0 leaves it free (${default})."`
 	Margin      string  `type:"word" placeholder:"MEDIUM:MAINS:BREAKS" help:"Pavilion angles lie above the critical angle in this medium, at the lower index, by so many degrees: mains, then all others. air:2:1 is an example."`
 	Cleavage    string  `type:"word" placeholder:"TILT,AZIM,MARGIN" help:"No facet lies within MARGIN degrees (5 if left out; common practice, no source) of the cleavage plane with this normal: degrees from the stone's axis and around it. plan takes the plan's axis."`
@@ -186,81 +184,30 @@ func (f *tuneLimits) readRough(t *tuning) error {
 	if f.Rough == "" {
 		return nil
 	}
-	var ref facets.RoughRef
-	if f.Rough == "plan" {
-		if t.plan == nil || t.plan.Rough == nil {
-			return commandFaultf("--rough plan: the plan names no rough; write its shape and sizes, such as box:10x8x7")
-		}
-		ref = *t.plan.Rough
-	} else {
-		shape, sizes, _ := strings.Cut(f.Rough, ":")
-		ref.Shape = shape
-		for _, part := range strings.Split(sizes, "x") {
-			v, err := strconv.ParseFloat(part, 64)
-			if err != nil {
-				return commandFaultf("--rough %q: write its shape and sizes in mm, such as box:10x8x7", f.Rough)
-			}
-			ref.SizeMM = append(ref.SizeMM, v)
-		}
-	}
-	rough, err := readRoughRef(ref, t.plan)
+	ref, folder, err := f.roughRef(t.plan)
 	if err != nil {
 		return err
 	}
-	t.problem.Rough = rough
+	rough, err := ref.Rough(folder)
+	if err != nil {
+		return inputFault(err)
+	}
+	t.problem.Rough = &rough
 	return nil
 }
 
-// readRoughRef makes a piece of rough of what a plan says of it.
-func readRoughRef(ref facets.RoughRef, plan *facets.Plan) (*facets.Rough, error) {
-	r := &facets.Rough{}
-	size := func(n int) error {
-		if len(ref.SizeMM) != n {
-			return commandFaultf("--rough: a %s has %d sizes, not %d", ref.Shape, n, len(ref.SizeMM))
+// roughRef returns what --rough says, and the folder from which it names files.
+func (f *tuneLimits) roughRef(plan *facets.Plan) (ref *facets.RoughRef, folder string, err error) {
+	if f.Rough == "plan" {
+		if plan == nil || plan.Rough == nil {
+			return nil, "", commandFaultf("--rough plan: the plan names no rough; write its shape and sizes, such as box:10x8x7")
 		}
-		return nil
+		return plan.Rough, filepath.Dir(plan.File), nil
 	}
-	switch ref.Shape {
-	case "box", "ellipsoid":
-		if err := size(3); err != nil {
-			return nil, err
-		}
-		r.Size = mgl64.Vec3{ref.SizeMM[0], ref.SizeMM[1], ref.SizeMM[2]}
-		if ref.Shape == "ellipsoid" {
-			r.Shape = facets.Ellipsoid
-		}
-	case "cylinder":
-		if err := size(2); err != nil {
-			return nil, err
-		}
-		r.Shape, r.Size = facets.Cylinder, mgl64.Vec3{ref.SizeMM[0], ref.SizeMM[0], ref.SizeMM[1]}
-	case "scan":
-		file, err := os.Open(ref.File)
-		if err != nil {
-			return nil, inputFault(missing(ref.File, err))
-		}
-		defer file.Close()
-		if r.Scan, err = facets.ReadScan(file, ref.File, facets.ScanOptions{Rough: true}); err != nil {
-			return nil, inputFault(err)
-		}
-		r.Shape = facets.Scanned
-	default:
-		return nil, commandFaultf("--rough: there is no shape %q; use box, cylinder or ellipsoid", ref.Shape)
+	if ref, err = facets.ParseRough(f.Rough); err != nil {
+		return nil, "", commandFaultf("--rough: %w", err)
 	}
-	if ref.HasAllowance {
-		if r.Allowance = ref.AllowanceMM; r.Allowance == 0 {
-			r.Allowance = -1 // none, where 0 stands for the usual one
-		}
-	}
-	for _, a := range ref.Avoid {
-		if a.RadiusMM > 0 {
-			r.AvoidSpheres = append(r.AvoidSpheres, facets.Sphere{Centre: a.PointMM, Radius: a.RadiusMM})
-		} else {
-			n := mgl64.Vec3(a.Normal).Normalize()
-			r.AvoidPlanes = append(r.AvoidPlanes, facets.Plane{Normal: n, Distance: n.Dot(a.PointMM)})
-		}
-	}
-	return r, nil
+	return ref, "", nil
 }
 
 // readSlips reads the machine's errors.
