@@ -266,3 +266,26 @@ func TestHostilePlans(t *testing.T) {
 		}
 	}
 }
+
+// A plan names no scan outside its folder: neither a device, nor another user's files, nor
+// another machine's.
+func TestRoughStaysBesideThePlan(t *testing.T) {
+	head := strings.Replace(barrel, "gear = 96", "gear = 96\nrough = { shape = \"scan\", file = 'FILE' }", 1)
+	if head == barrel {
+		t.Fatal("the plan has no place for rough")
+	}
+	for file, fine := range map[string]bool{
+		"rough.stl": true, "scans/rough.stl": true, "./rough.stl": true,
+		"../rough.stl": false, "scans/../../rough.stl": false, "/etc/passwd": false, "/dev/zero": false, "..": false,
+		`\\there\\share\\rough.stl`: false, `C:\\rough.stl`: false, "C:rough.stl": false, `..\\rough.stl`: false,
+	} {
+		_, err := ReadPlan(strings.NewReader(strings.Replace(head, "FILE", file, 1)), "p.toml")
+		if fine != (err == nil) || err != nil && !strings.Contains(err.Error(), "beside the plan") {
+			t.Errorf("%s: %v", file, err)
+		}
+	}
+	q := RoughRef{Shape: "scan", File: "."}
+	if _, err := q.Rough(t.TempDir()); err == nil || !strings.Contains(err.Error(), "no file that holds a scan") {
+		t.Errorf("a folder as a scan: %v", err)
+	}
+}

@@ -390,6 +390,10 @@ func (r *reader) rough(line int, entries []entry) {
 			}
 		case "file":
 			q.File = r.str(e)
+			if q.File != "" && !beside(q.File) {
+				r.fault(e.line, "file", e.value.written, "a plan names a scan in its own folder or below, nowhere else",
+					"put the scan beside the plan and write its name alone")
+			}
 		case "allowance_mm":
 			v, ok := r.num(e)
 			if ok && v < 0 {
@@ -420,6 +424,12 @@ func (r *reader) rough(line int, entries []entry) {
 		r.fault(line, "size_mm", fmt.Sprint(q.SizeMM), fmt.Sprintf("a %s needs %d sizes", q.Shape, n),
 			"box and ellipsoid have three extents, a cylinder diameter and height, a scan none")
 	}
+}
+
+// beside reports whether a path from a plan stays in the plan's folder, on any system: a
+// plan may come from a stranger, and must not name a device or another machine's folder.
+func beside(path string) bool {
+	return filepath.IsLocal(path) && !strings.ContainsAny(path, "\\:\x00")
 }
 
 func (r *reader) flaw(it item) RoughFlaw {

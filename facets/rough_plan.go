@@ -62,6 +62,9 @@ func (q *RoughRef) Rough(folder string) (Rough, error) {
 		if !filepath.IsAbs(path) {
 			path = filepath.Join(folder, path)
 		}
+		if info, err := os.Stat(path); err == nil && !info.Mode().IsRegular() { // to open some waits for ever
+			return r, &Fault{File: path, Field: "rough", Why: "this is no file that holds a scan", Remedy: "name a scan (.stl, .obj, .ply)"}
+		}
 		f, err := os.Open(path)
 		if err != nil {
 			return r, &Fault{File: path, Field: "rough", Why: "the scan of the rough cannot be read", Remedy: "name a file that is there"}

@@ -31,6 +31,8 @@ type Environment struct {
 	Stderr   io.Writer
 	Terminal bool // whether Stderr is a terminal, where a line may be redrawn
 
+	bar io.Writer // Stderr as it is, for the bar of progress
+
 	// Window opens the window on the plan or scan of the given path, on the bundled
 	// stone for "", and returns when it was closed.
 	Window func(ctx context.Context, path string) error
@@ -58,6 +60,8 @@ func commandFaultf(format string, args ...any) error {
 // the window. It stops when ctx is cancelled. Nothing is printed to Stdout by a
 // command that fails.
 func Main(ctx context.Context, args []string, env Environment) (status int) {
+	env.bar = env.Stderr
+	env.Stdout, env.Stderr = printable{env.Stdout}, printable{env.Stderr}
 	defer func() {
 		if r := recover(); r != nil {
 			fmt.Fprintf(env.Stderr, "pavilight: this is a fault of the program, not yours: %v\n%s", r, debug.Stack())

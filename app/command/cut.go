@@ -96,7 +96,7 @@ func (k *cutCommand) Run(c call) error {
 	if _, err := openOut(folder); err != nil { // told before the work, not after it
 		return err
 	}
-	bar := newProgress(c.env.Stderr, c.env.Terminal)
+	bar := newProgress(c.env.bar, c.env.Terminal)
 	defer bar.clear()
 	var sheets []*sheet.Sheet
 	for i, plan := range plans {

@@ -55,7 +55,7 @@ func (c call) progress() *progress {
 	if c.inSweep {
 		return newProgress(io.Discard, false)
 	}
-	return newProgress(c.env.Stderr, c.env.Terminal)
+	return newProgress(c.env.bar, c.env.Terminal)
 }
 
 // warn prints a warning.

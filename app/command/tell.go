@@ -101,7 +101,7 @@ func (t *tellCommand) Run(c call) error {
 	if t.Compare && len(failed) > 0 {
 		return inputFault(errors.Join(failed...))
 	}
-	bar := newProgress(c.env.Stderr, c.env.Terminal)
+	bar := newProgress(c.env.bar, c.env.Terminal)
 	defer bar.clear()
 	var result tellResult
 	var all []*report.Findings

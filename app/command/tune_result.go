@@ -12,6 +12,7 @@ import (
 	"text/tabwriter"
 	"time"
 
+	"pavilight/app/cell"
 	"pavilight/app/chart"
 	"pavilight/app/disk"
 	"pavilight/app/drawing"
@@ -388,9 +389,16 @@ func exact(v float64) string { return strconv.FormatFloat(v, 'g', -1, 64) }
 
 func printCSV(w io.Writer, rows [][]string) error {
 	c := csv.NewWriter(w)
-	if err := c.WriteAll(rows); err != nil {
-		return err
+	for _, row := range rows {
+		safe := make([]string, len(row))
+		for i, text := range row {
+			safe[i] = cell.Text(text)
+		}
+		if err := c.Write(safe); err != nil {
+			return err
+		}
 	}
+	c.Flush()
 	return c.Error()
 }
 

@@ -12,6 +12,7 @@ import (
 	"os"
 	"os/exec"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 )
@@ -267,6 +268,93 @@ func TestRasterCutsAtTheEdge(t *testing.T) {
 					t.Fatalf("a square from %v: pixel %d, %d outside is %v", at, x, y, got)
 				}
 			}
+		}
+	}
+}
+
+// A document's names are text whatever they say: poppler reads them back letter for
+// letter, and finds no script, form or second attachment.
+func TestNamesInThePDFAreNoCode(t *testing.T) {
+	for _, name := range []string{
+		`) /OpenAction << /S /JavaScript /JS (app.alert\(1\)) >> (`,
+		`\) >> endobj 1 0 obj << /JS (x) >>`,
+		"endstream\nendobj\n%%EOF\nxref",
+		`((((`, `))))`, `\`, `ends in \`,
+		// Letters whose halves in UTF-16 are ")/JS" and "\)>>" as bytes.
+		"\u292f\u4a53", "\u5c29\u3e3e", "\u5c5c\u2929", "\u0d0a\u0d29\u280d",
+	} {
+		d := sampleDocument()
+		d.Title, d.Author, d.Subject, d.Creator = name, name, name, name
+		d.Pages[0].Bookmark = name
+		d.Pages[0].Write(Type{9, false}, Grey(0), Left, Point{8, 60}, Type{9, false}.Cut(name, 80))
+		d.Attachments[0].Name, d.Attachments[0].About = name+".toml", name
+		pdf := pdfOf(t, d)
+		info := string(tool(t, pdf, "pdfinfo", func(f string) []string { return []string{f} }))
+		for _, want := range []string{"JavaScript:      no", "Form:            none", "Pages:           1"} {
+			if !strings.Contains(info, want) {
+				t.Errorf("%q: no %q in\n%s", name, want, info)
+			}
+		}
+		// pdfinfo prints control characters as they are.
+		if title, _, _ := strings.Cut(strings.TrimPrefix(info, "Title:"), "Subject:"); strings.TrimSpace(title) != strings.TrimSpace(name) {
+			t.Errorf("%q came out as %q", name, title)
+		}
+		list := string(tool(t, pdf, "pdfdetach", func(f string) []string { return []string{"-list", f} }))
+		if !strings.HasPrefix(list, "1 embedded file") {
+			t.Errorf("%q: attachments %s", name, list)
+		}
+		target := filepath.Join(t.TempDir(), "out")
+		tool(t, pdf, "pdfdetach", func(f string) []string { return []string{"-save", "1", "-o", target, f} })
+		if got, err := os.ReadFile(target); err != nil || string(got) != "plan = 1\n" {
+			t.Errorf("%q: the attachment is %q, %v", name, got, err)
+		}
+	}
+}
+
+// A name in a picture is text too: the picture is well-formed and has the same elements.
+func TestNamesInTheSVGAreNoCode(t *testing.T) {
+	elements := func(name string) (kinds []string, words string) {
+		p := samplePage()
+		clean, _ := Clean(name)
+		p.Write(Type{9, false}, Grey(0), Left, Point{8, 60}, clean)
+		p.Write(Type{9, false}, Grey(0), Left, Point{8, 60}, name) // also where nobody cleaned it
+		var b bytes.Buffer
+		if err := p.SVG(&b); err != nil {
+			t.Fatal(err)
+		}
+		d := xml.NewDecoder(&b)
+		for {
+			token, err := d.Token()
+			if errors.Is(err, io.EOF) {
+				return kinds, words
+			}
+			if err != nil {
+				t.Fatalf("%q: %v", name, err)
+			}
+			switch token := token.(type) {
+			case xml.StartElement:
+				kinds = append(kinds, token.Name.Local)
+				for _, a := range token.Attr {
+					kinds = append(kinds, a.Name.Local)
+				}
+			case xml.CharData:
+				words += string(token)
+			case xml.Comment, xml.Directive:
+				kinds = append(kinds, "comment")
+			}
+		}
+	}
+	want, _ := elements("Harbour Eight")
+	for _, name := range []string{
+		"<script>alert(1)</script>", "</text><a xlink:href='javascript:1'>", "]]>", "<!-- -->", "&#x3c;b&#x3e; &amp;", "\x00\x1b\xff\ufffe",
+		`" onload="alert(1)`,
+	} {
+		kinds, words := elements(name)
+		if !slices.Equal(kinds, want) {
+			t.Errorf("%q makes other elements: %v", name, kinds)
+		}
+		if clean, _ := Clean(name); !strings.Contains(words, clean) {
+			t.Errorf("%q is not among the words", clean)
 		}
 	}
 }

@@ -85,8 +85,12 @@ func (d *Document) FileName() string {
 	if d.Path != "" {
 		return filepath.Base(d.Path)
 	}
+	const most = 60 // letters: systems take 255 bytes with what is added
 	name := []rune{}
 	for _, r := range d.Plan().Name {
+		if len(name) == most {
+			break
+		}
 		switch {
 		case r >= 'A' && r <= 'Z':
 			name = append(name, r-'A'+'a')

@@ -10,6 +10,7 @@ import (
 	"math"
 	"strconv"
 
+	"pavilight/app/cell"
 	"pavilight/trace"
 )
 
@@ -140,7 +141,7 @@ func LedgerCSV(w io.Writer, f *Findings) error {
 			if c.Spread != nil {
 				text = full(spread(c.Spread))
 			}
-			rows = append(rows, []string{f.Name, c.Medium.Key, arrangement(c.Column), entry, full(v), full(e), text})
+			rows = append(rows, []string{cell.Text(f.Name), c.Medium.Key, arrangement(c.Column), entry, full(v), full(e), text})
 		}
 		for q := trace.Surface; q <= trace.Unresolved; q++ {
 			row(q.String(), q.Of(c.Ledger), q.Of(c.StandardError), func(s *Shares) float64 { return q.Of(s.Ledger) })
@@ -159,7 +160,7 @@ func TiltCSV(w io.Writer, f *Findings) error {
 	for _, t := range f.Tilts {
 		for i := range t.Columns {
 			c := &t.Columns[i]
-			rows = append(rows, []string{f.Name, full(math.Round(t.Angle.Degrees()*1e9) / 1e9), "0", c.Medium.Key,
+			rows = append(rows, []string{cell.Text(f.Name), full(math.Round(t.Angle.Degrees()*1e9) / 1e9), "0", c.Medium.Key,
 				full(c.Ledger.Returned), full(c.StandardError.Returned), full(c.Ledger.Leaked), full(c.StandardError.Leaked)})
 		}
 	}

@@ -8,6 +8,8 @@ import (
 	"image"
 	"image/png"
 	"io"
+	"strings"
+	"unicode"
 
 	"golang.org/x/image/font/gofont/gobold"
 	"golang.org/x/image/font/gofont/goregular"
@@ -58,6 +60,22 @@ dt{font-weight:bold}dd{margin:0}
 @media (max-width:34rem){dl{grid-template-columns:1fr}dd{margin-bottom:.5rem}}
 `
 
+// escaped returns a text as it stands in the page: what a browser would take for code is
+// escaped, and characters that are none, or that turn the direction of writing, are left
+// out.
+func escaped(text string) string {
+	text = strings.Map(func(r rune) rune {
+		switch {
+		case unicode.IsSpace(r):
+			return ' '
+		case unicode.IsControl(r), unicode.Is(unicode.Bidi_Control, r), r == '\ufeff':
+			return -1
+		}
+		return r
+	}, strings.ToValidUTF8(text, "\ufffd"))
+	return html.EscapeString(text)
+}
+
 // page writes HTML.
 type page struct {
 	bytes.Buffer
@@ -74,20 +92,20 @@ func (d *document) html(w io.Writer) error {
 	p.line(`<head>`)
 	p.line(`<meta charset="utf-8">`)
 	p.line(`<meta name="viewport" content="width=device-width, initial-scale=1">`)
-	p.line(`<meta name="generator" content="%s">`, html.EscapeString(d.cover.Program))
+	p.line(`<meta name="generator" content="%s">`, escaped(d.cover.Program))
 	// What follows forbids the browser every request: the page must do without.
 	p.line(`<meta http-equiv="Content-Security-Policy" content="default-src 'none'; img-src data:; font-src data:; style-src 'unsafe-inline'">`)
-	p.line(`<title>%s</title>`, html.EscapeString(d.fileTitle()))
+	p.line(`<title>%s</title>`, escaped(d.fileTitle()))
 	p.line(`<style>%s%s%s</style>`, fontFace("normal", goregular.TTF), fontFace("bold", gobold.TTF), look)
 	p.line(`</head>`)
 	p.line(`<body>`)
 	p.line(`<main>`)
 	if img := d.cover.Letterhead; img != nil {
-		p.line(`<img class="letterhead" alt="%s" src="%s">`, html.EscapeString(d.cover.Author), p.data(img))
+		p.line(`<img class="letterhead" alt="%s" src="%s">`, escaped(d.cover.Author), p.data(img))
 	}
-	p.line(`<h1>%s</h1>`, html.EscapeString(d.title))
+	p.line(`<h1>%s</h1>`, escaped(d.title))
 	for _, l := range d.lines {
-		p.line(`<p class="line">%s</p>`, html.EscapeString(l))
+		p.line(`<p class="line">%s</p>`, escaped(l))
 	}
 	for _, one := range d.parts {
 		p.part(one)
@@ -115,17 +133,17 @@ func (p *page) part(one part) {
 			p.part(each)
 		}
 	case heading:
-		p.line(`<h2>%s</h2>`, html.EscapeString(one.words))
+		p.line(`<h2>%s</h2>`, escaped(one.words))
 	case text:
 		class := ""
 		if one.small {
 			class = ` class="small"`
 		}
-		words := html.EscapeString(one.words)
+		line := escaped(one.words)
 		if one.bold {
-			words = "<b>" + words + "</b>"
+			line = "<b>" + line + "</b>"
 		}
-		p.line(`<p%s>%s</p>`, class, words)
+		p.line(`<p%s>%s</p>`, class, line)
 	case beside:
 		p.line(`<div class="beside"><div>`)
 		for _, t := range one.texts {
@@ -138,8 +156,8 @@ func (p *page) part(one part) {
 		p.line(`<div class="columns">`)
 		for _, column := range one {
 			p.line(`<div>`)
-			for _, words := range column {
-				p.line(`<p>%s</p>`, html.EscapeString(words))
+			for _, one := range column {
+				p.line(`<p>%s</p>`, escaped(one))
 			}
 			p.line(`</div>`)
 		}
@@ -148,11 +166,11 @@ func (p *page) part(one part) {
 		p.line(`<div class="plates">`)
 		for _, item := range one.items {
 			p.line(`<figure><img alt="%s" src="%s"><figcaption><b>%s</b>%s</figcaption></figure>`,
-				html.EscapeString(item.title), p.data(item.image), html.EscapeString(item.title), html.EscapeString(item.caption))
+				escaped(item.title), p.data(item.image), escaped(item.title), escaped(item.caption))
 		}
 		p.line(`</div>`)
 	case figure:
-		p.line(`<div role="img" aria-label="%s">`, html.EscapeString(one.alt))
+		p.line(`<div role="img" aria-label="%s">`, escaped(one.alt))
 		if err := one.page.Inline(p); err != nil {
 			p.err = err
 		}
@@ -162,7 +180,7 @@ func (p *page) part(one part) {
 	case list:
 		p.line(`<dl>`)
 		for _, item := range one.items {
-			p.line(`<dt>%s</dt><dd>%s</dd>`, html.EscapeString(item.term), html.EscapeString(item.meaning))
+			p.line(`<dt>%s</dt><dd>%s</dd>`, escaped(item.term), escaped(item.meaning))
 		}
 		p.line(`</dl>`)
 	}
@@ -172,7 +190,7 @@ func (p *page) table(t table) {
 	row := func(cell string, cells []string) {
 		p.WriteString("<tr>")
 		for _, c := range cells {
-			fmt.Fprintf(p, "<%s>%s</%[1]s>", cell, html.EscapeString(c))
+			fmt.Fprintf(p, "<%s>%s</%[1]s>", cell, escaped(c))
 		}
 		p.line("</tr>")
 	}

@@ -43,6 +43,11 @@ func OpenLetterhead(path string) (image.Image, error) {
 	if info.Size() > mostLetterheadBytes {
 		return nil, fmt.Errorf("%s: the picture takes %.1f MB; use one of at most %d MB", path, float64(info.Size())/(1<<20), mostLetterheadBytes>>20)
 	}
+	return readLetterhead(f, path)
+}
+
+// readLetterhead reads a picture of sensible size.
+func readLetterhead(f io.ReadSeeker, path string) (image.Image, error) {
 	config, _, err := image.DecodeConfig(f)
 	if err != nil {
 		return nil, fmt.Errorf("%s: this is no picture that can be read (%w); use PNG, JPEG or GIF", path, err)

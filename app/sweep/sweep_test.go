@@ -12,6 +12,9 @@ import (
 	"slices"
 	"strings"
 	"testing"
+
+	"pavilight/app/cell"
+	"pavilight/testdata/budget"
 )
 
 // jobs returns so many jobs with keys in no order.
@@ -456,6 +459,92 @@ func FuzzList(f *testing.F) {
 		for _, l := range lines {
 			for _, w := range l.Words {
 				ParseOver(w, func(string) bool { return true })
+			}
+		}
+	})
+}
+
+// Whatever a file of results holds, it is refused or its rows can be written, read again
+// and put into a table.
+func FuzzReadResults(f *testing.F) {
+	folder := f.TempDir()
+	all := jobs(3)
+	identity, err := NewIdentity("look", all, "one program", "one kernel")
+	if err != nil {
+		f.Fatal(err)
+	}
+	r := &Run{Identity: identity, Jobs: all, Shard: Shard{1, 1}, Path: filepath.Join(folder, "seed.jsonl"), Report: func(int, int) {},
+		Do: func(_ context.Context, place int) (Outcome, error) {
+			return Outcome{Result: []byte(`{"name":"=a<b","media":[{"returned":0.5,"from":[1,2]}],"points":[]}`), Notes: []string{"-n"}}, nil
+		}}
+	if _, err := r.Go(context.Background()); err != nil {
+		f.Fatal(err)
+	}
+	whole, err := os.ReadFile(r.Path)
+	if err != nil {
+		f.Fatal(err)
+	}
+	f.Add(whole)
+	f.Add(whole[:len(whole)-20])
+	head, rows, _ := bytes.Cut(whole, []byte("\n"))
+	f.Add(append(bytes.Replace(head, []byte(`"rows_sha256"`), []byte(`"x"`), 1), append([]byte("\n"), rows...)...))
+	f.Add([]byte(`{"sweep":1,"jobs":2147483648,"of":-1}` + "\n"))
+	f.Add([]byte(`{"sweep":1,"jobs":9,"shard":1,"of":1}` + "\n" + `{"job":1,"settings":{"a":[[1]],"b":{"c":null}},"result":[{"":"="}]}` + "\n"))
+	path := filepath.Join(folder, "fuzz.jsonl")
+	f.Fuzz(func(t *testing.T, data []byte) {
+		var head header
+		var rows []line
+		var err error
+		budget.Hold(t, 200*len(data), func() { head, rows, err = read(bytes.NewReader(data)) })
+		if err != nil {
+			if len(rows) > 0 {
+				t.Errorf("rows beside %v", err)
+			}
+			return
+		}
+		results := Results{Identity: head.Identity, lines: rows}
+		var table bytes.Buffer
+		if err := results.WriteTable(&table); err == nil {
+			cells, err := csv.NewReader(&table).ReadAll()
+			if err != nil || len(cells) < 1 {
+				t.Fatalf("the table does not read: %v", err)
+			}
+			for _, row := range cells[1:] {
+				for _, text := range row {
+					if text != cell.Text(text) {
+						t.Errorf("a spreadsheet takes %q for a formula", text)
+					}
+				}
+			}
+		}
+		if err := write(path, head, rows); err != nil {
+			t.Fatal(err)
+		}
+		_, again, err := open(path)
+		if err != nil || digestOf(again) != digestOf(rows) {
+			t.Errorf("read again: %v, %d rows, were %d", err, len(again), len(rows))
+		}
+	})
+}
+
+// Whatever a list holds, it is refused or each of its lines has words.
+func FuzzReadList(f *testing.F) {
+	f.Add([]byte("plan.toml --tilt 10\n# note\n\n\"a plan.toml\" --in 'air, water'\r\n"))
+	f.Add([]byte("\ufeff'"))
+	f.Add([]byte("\"\" ''\n\x00"))
+	f.Fuzz(func(t *testing.T, data []byte) {
+		var lines []Line
+		var err error
+		budget.Hold(t, 100*len(data), func() { lines, err = ReadList(bytes.NewReader(data), "list.txt") })
+		if err != nil {
+			if !strings.HasPrefix(err.Error(), "list.txt:") {
+				t.Errorf("%v names no file", err)
+			}
+			return
+		}
+		for _, l := range lines {
+			if len(l.Words) == 0 || l.Number < 1 {
+				t.Errorf("line %+v", l)
 			}
 		}
 	})

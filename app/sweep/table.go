@@ -8,6 +8,8 @@ import (
 	"io"
 	"slices"
 	"strings"
+
+	"pavilight/app/cell"
 )
 
 // cells are the cells of a line of the table by the names of their columns, which are
@@ -94,16 +96,16 @@ func (r *Results) WriteTable(w io.Writer) error {
 func tableLines(row *Row, settings map[string]json.RawMessage) ([]cells, error) {
 	about := cells{values: map[string]string{}}
 	about.put("job", fmt.Sprint(row.Job))
-	about.put("file", safe(row.File))
+	about.put("file", cell.Text(row.File))
 	for name, value := range settings {
 		if _, err := flatten(&about, "settings."+name, value); err != nil {
 			return nil, err
 		}
 	}
 	about.names = nil // their columns are placed by name
-	about.put("notes", safe(strings.Join(row.Notes, "; ")))
-	about.put("error", safe(strings.Join(strings.Split(row.Error, "\n"), "; ")))
-	about.put("key", safe(row.Key))
+	about.put("notes", cell.Text(strings.Join(row.Notes, "; ")))
+	about.put("error", cell.Text(strings.Join(strings.Split(row.Error, "\n"), "; ")))
+	about.put("key", cell.Text(row.Key))
 	if row.Result == nil {
 		return []cells{about}, nil
 	}
@@ -164,26 +166,18 @@ func flatten(c *cells, name string, text []byte) (many []json.RawMessage, err er
 	case '[':
 		var words []string
 		if json.Unmarshal(text, &words) == nil && len(words) > 0 {
-			c.put(name, safe(strings.Join(words, "; ")))
+			c.put(name, cell.Text(strings.Join(words, "; ")))
 		}
 	case '"':
 		var word string
 		if err := json.Unmarshal(text, &word); err != nil {
 			return nil, err
 		}
-		c.put(name, safe(word))
+		c.put(name, cell.Text(word))
 	case 'n':
 		c.put(name, "")
 	default:
 		c.put(name, string(text))
 	}
 	return many, nil
-}
-
-// safe returns a text that a spreadsheet takes for text and not for a formula.
-func safe(text string) string {
-	if text != "" && strings.ContainsRune("=+-@\t\r", rune(text[0])) {
-		return "'" + text
-	}
-	return text
 }
