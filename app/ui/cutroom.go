@@ -261,9 +261,7 @@ func (w *window) refreshCut() {
 		c.pages.show(c.cut.Page, c.cut.Pages(), c.cut.Picture, c.cut.Shape())
 	}
 	w.refreshProgress()
-	if c.cut.Ready() && c.cut.Picture != nil {
-		w.once("sheet")
-	}
+	w.tellReady(cutRoom, "sheet", c.cut.Ready() && c.cut.Picture != nil)
 }
 
 // at is what the room is at, for the header.

@@ -137,6 +137,7 @@ func (w *window) showFileDialog(d *dialog.FileDialog) {
 	w.raise(d)
 	size := w.win.Canvas().Size()
 	d.Resize(fyne.NewSize(min(900, size.Width*0.9), min(620, size.Height*0.9))) // before it is raised it has no size to change
+	w.tellOnceDrawn("choosing")
 }
 
 // folder is where the plan lies, else where the last one did, else the user's own.

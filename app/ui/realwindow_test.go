@@ -115,9 +115,12 @@ type program struct {
 	cmd    *exec.Cmd
 	stages chan string
 
+	patience time.Duration // with one stage
+
 	mu     sync.Mutex
 	log    strings.Builder
 	places map[string][2]string
+	states []string // that the window told when it was asked
 }
 
 var build = sync.OnceValues(func() (string, error) {
@@ -145,7 +148,7 @@ func (s *screen) start(theme brightness, width, height int, home string, args ..
 		os.WriteFile(filepath.Join(folder, "preferences.json"), []byte(settings), 0o600)); err != nil {
 		s.t.Fatal(err)
 	}
-	p := &program{t: s.t, screen: s, stages: make(chan string, 1000), places: map[string][2]string{}}
+	p := &program{t: s.t, screen: s, patience: patience, stages: make(chan string, 1000), places: map[string][2]string{}}
 	p.cmd = exec.Command(binary, args...)
 	p.cmd.Env = append(os.Environ(), "DISPLAY="+s.display, "WAYLAND_DISPLAY=", "HOME="+home, "XDG_CONFIG_HOME="+filepath.Join(home, ".config"),
 		"XDG_CACHE_HOME="+filepath.Join(home, ".cache"), "LANG=en_US.UTF-8", stagesVariable+"="+checkThreads)
@@ -174,6 +177,9 @@ func (p *program) listen(from io.Reader) {
 			n := len(words)
 			p.places[strings.Join(words[1:n-2], " ")] = [2]string{words[n-2], words[n-1]}
 		}
+		if len(words) > 1 && words[0] == "STATE" {
+			p.states = append(p.states, text)
+		}
 		p.mu.Unlock()
 		if len(words) > 1 && words[0] == "READY" {
 			p.stages <- words[1]
@@ -185,7 +191,7 @@ func (p *program) listen(from io.Reader) {
 // until waits for the window to tell a stage.
 func (p *program) until(stage string) {
 	p.t.Helper()
-	timer := time.After(patience)
+	timer := time.After(p.patience)
 	for {
 		select {
 		case told, open := <-p.stages:
@@ -196,7 +202,7 @@ func (p *program) until(stage string) {
 				p.t.Fatalf("the program ended before %q:\n%s", stage, p.said())
 			}
 		case <-timer:
-			p.t.Fatalf("waited %v in vain for %q:\n%s", patience, stage, p.said())
+			p.t.Fatalf("waited %v in vain for %q:\n%s", p.patience, stage, p.said())
 		}
 	}
 }

@@ -83,7 +83,9 @@ func Run(ctx context.Context, o Options) error {
 		})
 	})
 	defer stop()
+	endWatch := beginWatch(post)
 	w.win.ShowAndRun()
+	endWatch()
 	over.Store(true)
 	if !w.closed { // a signal ended the toolkit's loop
 		w.keepNow()

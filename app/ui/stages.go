@@ -93,6 +93,18 @@ func (w *window) tellPlaces() {
 	}
 	tell("solid", w.solid, 0.5)
 	tell("strip", w.grid.strip, 0.5)
+	for j, c := range w.grid.media {
+		tell(fmt.Sprintf("medium %d", j), c, 0.5)
+	}
+	switch w.room {
+	case tuneRoom:
+		tell("search", w.tuning.begin, 0.5)
+		tell("take", w.tuning.take, 0.5)
+	case cutRoom:
+		tell("save sheet", w.cutting.write, 0.5)
+	case tellRoom:
+		tell("save report", w.telling.pdf, 0.5)
+	}
 	for r, d := range w.doors {
 		tell("room "+string(room(r).name()), d, 0.5)
 	}

@@ -272,9 +272,7 @@ func (w *window) refreshTell() {
 		t.pages.show(t.tell.Page, t.tell.Pages(), t.tell.Picture, t.tell.Shape())
 	}
 	w.refreshProgress()
-	if t.tell.Ready() && t.tell.Picture != nil {
-		w.once("told")
-	}
+	w.tellReady(tellRoom, "told", t.tell.Ready() && t.tell.Picture != nil)
 }
 
 // at is what the room is at, for the header.
@@ -306,5 +304,6 @@ func (w *window) writeReportTo(path string) {
 			return
 		}
 		w.report("Written to %s", path)
+		w.tell("written")
 	})
 }

@@ -472,6 +472,7 @@ func (w *window) refreshTune() {
 		t.verdict.SetText(text)
 	}
 	w.refreshProgress()
+	w.tellReady(tuneRoom, "answered", !t.tune.Running && len(lines) > 0)
 }
 
 // taskHint says what a question is about, before it was asked.

@@ -81,6 +81,7 @@ type window struct {
 	ledgers throttle
 	told    *model.Frame // whose numbers the ledger shows
 	stages  map[string]bool
+	ready   map[room]bool             // whose answer was told of, until the next is asked for
 	dialogs []dialog.Dialog           // that are open, the top one last
 	asked   map[string]*widget.Button // answers of the question that is open, by their label
 }
@@ -88,7 +89,7 @@ type window struct {
 // newWindow builds the window around a bench; nothing is shown yet. system is the locale of
 // the system. do hands work to the toolkit's goroutine, in order, without waiting for it.
 func newWindow(a fyne.App, doc *model.Document, system string, do func(func()), tell func(string)) (*window, error) {
-	w := &window{app: a, do: do, tell: tell, system: system, stages: map[string]bool{}}
+	w := &window{app: a, do: do, tell: tell, system: system, stages: map[string]bool{}, ready: map[room]bool{}}
 	w.files = fileMemory{a.Preferences()}
 	w.words = w.files.words(system)
 	bench, err := model.NewBench(doc, do, w.onLook, w.onPlan)
@@ -335,6 +336,7 @@ func (w *window) enter(r room) {
 	w.cutting.film.halt()
 	w.followPlan()
 	w.refreshProgress()
+	w.tellOnceDrawn("entered")
 }
 
 // followPlan gives the open room the plan as it stands.
@@ -406,6 +408,14 @@ func (w *window) onLook(c model.Change) {
 		w.grid.refreshPointer()
 		w.refreshPointer()
 	}
+}
+
+// tellReady tells a stage whenever a room comes to its answer.
+func (w *window) tellReady(r room, stage string, ready bool) {
+	if ready && !w.ready[r] {
+		w.tell(stage)
+	}
+	w.ready[r] = ready
 }
 
 // once tells a stage the first time it is reached.
