@@ -202,7 +202,7 @@ func TestAnHourInTheWindow(t *testing.T) {
 		copyPlan(t, w.file, folder)
 	}
 	p := s.start(inDark, 1360, 860, home, filepath.Join(folder, "round.toml"))
-	p.patience = 90 * time.Second // other programs may want the machine, too
+	p.patience = 5 * time.Minute // other programs may want the machine, too
 	p.until("rocked")
 	p.state() // forgets the start
 
