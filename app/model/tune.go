@@ -222,7 +222,7 @@ func (t *Tune) SetLimits(i int, low, high float64) error {
 	v := t.Choices[i].Variable
 	least, most := tune.Widest(tune.PlanPattern{Plan: t.plan}, v)
 	if !(low >= least && high <= most && low <= high) {
-		return words.Errorf("%s: use limits from %g to %g %s, the smaller first", v.Name, least, most, unitName(v))
+		return words.Errorf("%s: use limits from %g to %g %s, the smaller first", VariableName(t.words, v), least, most, unitName(v))
 	}
 	t.Choices[i].Low, t.Choices[i].High = low, high
 	t.onChange()

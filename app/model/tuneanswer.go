@@ -60,6 +60,19 @@ func onStep(v tune.Variable, x float64) float64 {
 	return math.Round(math.Round(x/v.Step)*v.Step*1e9) / 1e9
 }
 
+// VariableName returns what a variable is called: that of a tier's angle is the tier's own.
+func VariableName(w *words.Words, v tune.Variable) string {
+	tier, rule, ok := strings.Cut(v.Name, ".")
+	what, known := map[string]words.Key{
+		"distance": "%s distance", "centre": "%s centre", "level": "%s level", "edge": "%s edge", "girdle": "%s girdle",
+		"table": "%s table", "culet": "%s culet",
+	}[rule]
+	if !ok || !known {
+		return v.Name
+	}
+	return w.Say(what, tier)
+}
+
 // unitName returns the unit of a variable; a plain number has none.
 func unitName(v tune.Variable) words.Key {
 	if v.Unit == "degrees" {
@@ -105,7 +118,7 @@ func (t *Tune) changes(vs []tune.Variable, values []float64) (lines [][2]string)
 	for i, v := range vs {
 		if i < len(values) {
 			x := onStep(v, values[i])
-			lines = append(lines, [2]string{v.Name,
+			lines = append(lines, [2]string{VariableName(t.words, v),
 				t.words.Say("%s to %s, %s", t.valueWords(v, v.Now), t.valueWords(v, x), t.changeWords(v, x-v.Now))})
 		}
 	}
@@ -186,7 +199,7 @@ func (t *Tune) outcomeWords(o *tune.Outcome, vs []tune.Variable) (lines []string
 	}
 	for i, v := range vs {
 		if x := o.Best.Values[i]; v.High > v.Low && (x < v.Low+v.Step*0.999 || x > v.High-v.Step*0.999) {
-			lines = append(lines, t.words.Say("%s stands at its limit: wider ones may do better.", v.Name))
+			lines = append(lines, t.words.Say("%s stands at its limit: wider ones may do better.", VariableName(t.words, v)))
 		}
 	}
 	for i, near := range o.Nearby {
@@ -194,9 +207,9 @@ func (t *Tune) outcomeWords(o *tune.Outcome, vs []tune.Variable) (lines []string
 		by := t.changeWords(v, near.Values[i/2]-o.Best.Values[i/2])
 		switch loss := o.Best.Score - near.Score; {
 		case !near.Seen:
-			lines = append(lines, t.words.Say("Careful: with %s %s there is no such stone.", v.Name, by))
+			lines = append(lines, t.words.Say("Careful: with %s %s there is no such stone.", VariableName(t.words, v), by))
 		case loss > nearLoss*math.Abs(o.Best.Score):
-			lines = append(lines, t.words.Say("Careful: with %s %s it loses %.3f. The best stands at an edge; rocking the stone, too, may find a calmer place.", v.Name, by, loss))
+			lines = append(lines, t.words.Say("Careful: with %s %s it loses %.3f. The best stands at an edge; rocking the stone, too, may find a calmer place.", VariableName(t.words, v), by, loss))
 		}
 	}
 	return append(lines, t.words.Say("%d stones were looked at. Both shown are traced anew, with rays that the search has not seen.", o.Tried))

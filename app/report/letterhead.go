@@ -2,7 +2,6 @@ package report
 
 import (
 	"errors"
-	"fmt"
 	"image"
 	_ "image/gif"  // kinds of picture
 	_ "image/jpeg" // that a letterhead
@@ -12,6 +11,8 @@ import (
 	"os"
 
 	xdraw "golang.org/x/image/draw"
+
+	texts "pavilight/app/words"
 )
 
 // Bounds of a letterhead: of the file, and of what it unpacks to; and how many pixels an
@@ -27,7 +28,7 @@ const (
 func OpenLetterhead(path string) (image.Image, error) {
 	f, err := os.Open(path)
 	if errors.Is(err, fs.ErrNotExist) {
-		return nil, fmt.Errorf("%s: there is no such file; check the name and the folder", path)
+		return nil, texts.Errorf("%s: there is no such file; check the name and the folder", path)
 	}
 	if err != nil {
 		return nil, err
@@ -38,10 +39,10 @@ func OpenLetterhead(path string) (image.Image, error) {
 		return nil, err
 	}
 	if !info.Mode().IsRegular() {
-		return nil, fmt.Errorf("%s: this is no file; name a picture (PNG, JPEG or GIF)", path)
+		return nil, texts.Errorf("%s: this is no file; name a picture (PNG, JPEG or GIF)", path)
 	}
 	if info.Size() > mostLetterheadBytes {
-		return nil, fmt.Errorf("%s: the picture takes %.1f MB; use one of at most %d MB", path, float64(info.Size())/(1<<20), mostLetterheadBytes>>20)
+		return nil, texts.Errorf("%s: the picture takes %.1f MB; use one of at most %d MB", path, float64(info.Size())/(1<<20), mostLetterheadBytes>>20)
 	}
 	return readLetterhead(f, path)
 }
@@ -50,17 +51,17 @@ func OpenLetterhead(path string) (image.Image, error) {
 func readLetterhead(f io.ReadSeeker, path string) (image.Image, error) {
 	config, _, err := image.DecodeConfig(f)
 	if err != nil {
-		return nil, fmt.Errorf("%s: this is no picture that can be read (%w); use PNG, JPEG or GIF", path, err)
+		return nil, texts.Errorf("%s: this is no picture that can be read (%v); use PNG, JPEG or GIF", path, err)
 	}
 	if config.Width < 1 || config.Height < 1 || float64(config.Width)*float64(config.Height) > mostLetterheadPixels {
-		return nil, fmt.Errorf("%s: the picture has %d × %d pixels; use one of at most %.0f million", path, config.Width, config.Height, mostLetterheadPixels/1e6)
+		return nil, texts.Errorf("%s: the picture has %d × %d pixels; use one of at most %.0f million", path, config.Width, config.Height, mostLetterheadPixels/1e6)
 	}
 	if _, err := f.Seek(0, io.SeekStart); err != nil {
 		return nil, err
 	}
 	img, _, err := image.Decode(f)
 	if err != nil {
-		return nil, fmt.Errorf("%s: the picture is damaged (%w); use another copy of it", path, err)
+		return nil, texts.Errorf("%s: the picture is damaged (%v); use another copy of it", path, err)
 	}
 	return printed(img), nil
 }

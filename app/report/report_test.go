@@ -640,7 +640,10 @@ func TestReadUncertainties(t *testing.T) {
 	if err != nil || len(u) != 2 || u[1] != (Uncertainty{"pavilion", 0.1}) {
 		t.Fatalf("%v, %v", u, err)
 	}
-	for _, text := range []string{"", "crown", "crown=", "crown=0", "crown=-1", "crown=NaN", "crown=Inf", "crown=1,crown=2", "=1"} {
+	if with, err := ReadUncertainties("crown=0,2,pavilion=0,1"); err != nil || !slices.Equal(with, u) {
+		t.Errorf("with decimal commas: %v, %v; want %v", with, err, u)
+	}
+	for _, text := range []string{"", "crown", "crown=", "crown=1,2,3", "crown=0", "crown=-1", "crown=NaN", "crown=Inf", "crown=1,crown=2", "=1"} {
 		if _, err := ReadUncertainties(text); err == nil {
 			t.Errorf("%q was taken", text)
 		}

@@ -2,7 +2,6 @@ package report
 
 import (
 	"context"
-	"errors"
 	"fmt"
 	"math"
 	"math/rand/v2"
@@ -12,6 +11,7 @@ import (
 
 	"github.com/go-gl/mathgl/mgl64"
 
+	texts "pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/trace"
 )
@@ -27,25 +27,38 @@ type Uncertainty struct {
 type Uncertainties []Uncertainty
 
 // ReadUncertainties reads name=value pairs with commas between, such as
-// "crown=0.2,pavilion=0.1,table=0.5".
+// "crown=0.2,pavilion=0.1,table=0.5". Decimals may have a comma, too.
 func ReadUncertainties(text string) (Uncertainties, error) {
 	var all Uncertainties
-	for pair := range strings.SplitSeq(text, ",") {
+	for pair := range strings.SplitSeq(pointed(text), ",") {
 		name, value, ok := strings.Cut(strings.TrimSpace(pair), "=")
 		name = strings.TrimSpace(name)
 		if !ok || name == "" {
-			return nil, fmt.Errorf("%q is no pair of name and value; write it like crown=0.2", pair)
+			return nil, texts.Errorf("%q is no pair of name and value; write it like crown=0.2", pair)
 		}
 		v, err := strconv.ParseFloat(strings.TrimSpace(value), 64)
 		if err != nil || !(v > 0) || math.IsInf(v, 0) {
-			return nil, fmt.Errorf("%s=%s: a measuring error is a number above 0, in the unit of the proportion", name, value)
+			return nil, texts.Errorf("%s=%s: a measuring error is a number above 0, in the unit of the proportion", name, value)
 		}
 		if slices.ContainsFunc(all, func(u Uncertainty) bool { return u.Name == name }) {
-			return nil, fmt.Errorf("%s is given twice; leave one out", name)
+			return nil, texts.Errorf("%s is given twice; leave one out", name)
 		}
 		all = append(all, Uncertainty{name, v})
 	}
 	return all, nil
+}
+
+// pointed gives decimals that have a comma a point: one between two digits separates no
+// pairs, since each begins with a name.
+func pointed(text string) string {
+	digit := func(i int) bool { return i >= 0 && i < len(text) && text[i] >= '0' && text[i] <= '9' }
+	b := []byte(text)
+	for i := range b {
+		if b[i] == ',' && digit(i-1) && digit(i+1) {
+			b[i] = '.'
+		}
+	}
+	return string(b)
 }
 
 // String returns the pairs as they were given.
@@ -74,10 +87,10 @@ func (u Uncertainties) Fits(s *Stone) error {
 	for _, one := range u {
 		i := slices.Index(names, one.Name)
 		if i < 0 {
-			return fmt.Errorf("the stone %q has no measured %q; use %s", s.Name, one.Name, strings.Join(names, ", "))
+			return texts.Errorf("the stone %q has no measured %q; use %s", s.Name, one.Name, strings.Join(names, ", "))
 		}
 		if most := (known[i].High - known[i].Low) / 4; one.Sigma > most {
-			return fmt.Errorf("a measuring error of %g for %s is too large to say anything; use at most %g", one.Sigma, one.Name, most)
+			return texts.Errorf("a measuring error of %g for %s is too large to say anything; use at most %g", one.Sigma, one.Name, most)
 		}
 	}
 	return nil
@@ -91,7 +104,7 @@ const (
 
 // ErrNoStones tells that the measuring errors are so large that most stones within them
 // cannot exist.
-var ErrNoStones = errors.New("most stones within the stated measuring errors cannot exist; state smaller ones")
+var ErrNoStones = texts.Errorf("most stones within the stated measuring errors cannot exist; state smaller ones")
 
 // drawn returns the stones that the measurements may equally well have come from: each
 // proportion moved by a normal deviate of its standard deviation. The same seed draws the
@@ -107,7 +120,7 @@ func (f *Findings) drawn() ([]*facets.Stone, error) {
 		stone, err := f.moved(off)
 		if err != nil {
 			if refused++; refused > mostRefused {
-				return nil, fmt.Errorf("%w (the last: %w)", ErrNoStones, err)
+				return nil, texts.Errorf("%v (the last: %v)", ErrNoStones, err)
 			}
 			continue
 		}
@@ -233,7 +246,7 @@ func (f *Findings) spread(ctx context.Context, tell func(float64)) error {
 			stone, err = f.moved(map[string]float64{u.Name: -u.Sigma})
 		}
 		if err != nil {
-			return fmt.Errorf("%w (%s moved by %g: %w)", ErrNoStones, u.Name, u.Sigma, err)
+			return texts.Errorf("%v (%s moved by %g: %v)", ErrNoStones, u.Name, u.Sigma, err)
 		}
 		moved, err := f.shares(ctx, stone, dishes)
 		if err != nil {

@@ -303,7 +303,7 @@ func entryColour(q trace.Quantity) color.NRGBA {
 
 // Measures of the grid.
 const (
-	gutter    = 106 // left of the maps, for names
+	gutter    = 122 // left of the maps, for names
 	scaleWide = 40  // right of the maps, for the scale
 	between   = 10  // columns
 	beneath   = 8   // a row of maps

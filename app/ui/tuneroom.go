@@ -193,10 +193,10 @@ func (w *window) tuneQuestion() fyne.CanvasObject {
 	t.to = row("Material", t.toName)
 	t.choices = container.New(layout.NewCustomPaddedVBoxLayout(3))
 	t.vary = column(heading("What may vary"),
-		newWord(colourDim, theme.SizeNameCaptionText, w.words.Say("ticked tiers, between these limits; corners are kept")), t.choices)
+		newLine(colourDim, theme.SizeNameCaptionText).with(w.words.Say("ticked tiers, between these limits; corners are kept")), t.choices)
 	t.limits = column(append([]fyne.CanvasObject{heading("Limits of the lap")}, w.limitRows(row)...)...)
 	t.slips = column(append([]fyne.CanvasObject{heading("Errors of machine and hand"),
-		newWord(colourDim, theme.SizeNameCaptionText, w.words.Say("%s; yours may be others", model.MachineSource))}, w.slipRows(row)...)...)
+		newLine(colourDim, theme.SizeNameCaptionText).with(w.words.Say("%s; yours may be others", model.MachineSource))}, w.slipRows(row)...)...)
 	t.record = widget.NewCheck(w.recordWords(), nil)
 	t.record.Checked = t.tune.KeepFile != ""
 	t.record.OnChanged = w.chooseRecord
@@ -308,7 +308,8 @@ func (w *window) tuneAnswer() fyne.CanvasObject {
 		sides = append(sides, container.NewBorder(newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, w.words.Say(name)).bold(),
 			container.New(&linesLayout{2}, t.numbers[k]), nil, nil, []*canvas.Image{t.before, t.after}[k]))
 	}
-	legend := newWord(colourDim, theme.SizeNameCaptionText, w.words.Say("The pictures show light return in the first surrounding, from 0, dark, to 1, bright, as in Look."))
+	legend := newLine(colourDim, theme.SizeNameCaptionText).with(
+		w.words.Say("The pictures show light return in the first surrounding, from 0, dark, to 1, bright, as in Look."))
 	t.pair = container.New(layout.NewCustomPaddedLayout(14, 10, 16, 8),
 		container.NewBorder(nil, legend, nil, nil, container.New(&pairLayout{}, sides...)))
 	t.chart = newPageView(nil, w.strayKey)
@@ -565,7 +566,7 @@ func (w *window) showChoices() {
 		t.shape = shape
 		t.choices.Objects, t.fields, t.checks = nil, nil, nil
 		for i, c := range t.tune.Choices {
-			check := widget.NewCheck(strings.Replace(c.Name, ".", " ", 1), nil)
+			check := widget.NewCheck(model.VariableName(w.words, c.Variable), nil)
 			check.OnChanged = func(on bool) { t.tune.Choose(i, on) }
 			t.checks = append(t.checks, check)
 			var pair [2]*numberField

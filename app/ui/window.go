@@ -303,7 +303,7 @@ func (w *window) stonePane() fyne.CanvasObject {
 		pose("Culet", tipFaceDown, solid.FaceDown), pose("Askew", tipAskew, restingPose))
 	top := container.New(&squareLayout{}, w.solid, poses)
 	whence := newWord(theme.ColorNameForeground, theme.SizeNameText, w.words.Say("Where it comes from")).bold()
-	under := newWord(colourDim, theme.SizeNameCaptionText, w.words.Say("share of returned light by angle from the eye"))
+	under := newLine(colourDim, theme.SizeNameCaptionText).with(w.words.Say("share of returned light by angle from the eye"))
 	w.factBox = container.NewVScroll(container.New(layout.NewCustomPaddedLayout(8, 8, 14, 10),
 		container.New(layout.NewCustomPaddedVBoxLayout(3), w.facts.box, gap(1), whence, under, w.from)))
 	w.rayBox = w.buildRayBox()
