@@ -6,6 +6,8 @@ import (
 	"slices"
 	"strconv"
 	"strings"
+
+	"github.com/go-gl/mathgl/mgl64"
 )
 
 // PlanVersion is the version of the plan file that this program reads and
@@ -64,11 +66,27 @@ type MaterialRef struct {
 	Line    int     // in the plan file; 0 where it was not read
 }
 
-// Axis is a direction in the stone to keep an eye on: an optic axis or the
-// normal of a cleavage.
+// Axis is a direction in the stone to keep an eye on: an optic axis, the acute
+// bisectrix of two, or the normal of a cleavage.
 type Axis struct {
 	Tilt    Angle // from +z
 	Azimuth Angle // from +x toward +y
+
+	// Spin turns the plane of two optic axes about their bisectrix: from the plane
+	// that holds +z and the bisectrix, right-handed; for a bisectrix along +z from
+	// the direction of Azimuth.
+	Spin Angle
+}
+
+// Directions returns the unit vector along the axis, and one across it that lies in the
+// plane of two optic axes. Tilt, Azimuth and Spin are Euler angles about z, y and z.
+func (a Axis) Directions() (axis, plane mgl64.Vec3) {
+	sinT, cosT := math.Sincos(a.Tilt.Radians())
+	sinA, cosA := math.Sincos(a.Azimuth.Radians())
+	sinS, cosS := math.Sincos(a.Spin.Radians())
+	growing := mgl64.Vec3{cosT * cosA, cosT * sinA, -sinT} // where the axis goes with more tilt
+	around := mgl64.Vec3{-sinA, cosA, 0}
+	return mgl64.Vec3{sinT * cosA, sinT * sinA, cosT}, growing.Mul(cosS).Add(around.Mul(sinS))
 }
 
 // RoughRef is what a plan says about the piece it is to be cut from.

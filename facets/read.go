@@ -353,7 +353,7 @@ func (r *reader) headTable(name string, line int, entries []entry) {
 			r.fault(line, "material", "", "its refractive index is missing", "add index = 1.6 or what it is")
 		}
 	case "axis":
-		r.known(entries, "axis", []string{"tilt", "azimuth"})
+		r.known(entries, "axis", []string{"tilt", "azimuth", "spin"})
 		p.Axis = &Axis{}
 		for _, e := range entries {
 			v, ok := r.num(e)
@@ -366,6 +366,8 @@ func (r *reader) headTable(name string, line int, entries []entry) {
 				p.Axis.Tilt = Angle(v) * Degree
 			case e.key == "azimuth":
 				p.Axis.Azimuth = Angle(v) * Degree
+			case e.key == "spin":
+				p.Axis.Spin = Angle(v) * Degree
 			}
 		}
 	case "rough":

@@ -4,10 +4,13 @@ import (
 	"bytes"
 	"errors"
 	"fmt"
+	"math"
 	"os"
 	"path/filepath"
 	"strings"
 	"testing"
+
+	"github.com/go-gl/mathgl/mgl64"
 )
 
 // barrel is a small plan that solves: a square block with a roof below.
@@ -466,6 +469,40 @@ func TestTablesAnyWay(t *testing.T) {
 		}
 		if q.Material.Density != 3.1 || q.Tiers[2].Stop.Value != 0.25 || q.WidthMM != 3 {
 			t.Errorf("%s: the change was lost:\n%s", name, written(t, p))
+		}
+	}
+}
+
+// TestAxisDirections turns the axes by hand and reads a spin back.
+func TestAxisDirections(t *testing.T) {
+	half := math.Sqrt2 / 2
+	for _, row := range []struct {
+		name                string
+		tilt, azimuth, spin Angle
+		axis, plane         mgl64.Vec3
+	}{
+		{"upright", 0, 30, 60, mgl64.Vec3{0, 0, 1}, mgl64.Vec3{0, 1, 0}},
+		{"lying", 90, 0, 0, mgl64.Vec3{1, 0, 0}, mgl64.Vec3{0, 0, -1}},
+		{"lying, spun by a quarter", 90, 0, 90, mgl64.Vec3{1, 0, 0}, mgl64.Vec3{0, 1, 0}},
+		{"lying toward y, spun by a quarter", 90, 90, 90, mgl64.Vec3{0, 1, 0}, mgl64.Vec3{-1, 0, 0}},
+		{"half way", 45, 180, 0, mgl64.Vec3{-half, 0, half}, mgl64.Vec3{-half, 0, -half}},
+	} {
+		axis, plane := Axis{row.tilt * Degree, row.azimuth * Degree, row.spin * Degree}.Directions()
+		if axis.Sub(row.axis).Len() > 1e-15 || plane.Sub(row.plane).Len() > 1e-15 {
+			t.Errorf("%s: %v and %v, want %v and %v (turned by hand)", row.name, axis, plane, row.axis, row.plane)
+		}
+	}
+	for line, want := range map[string]Axis{
+		"axis = { tilt = 90, azimuth = 10 }":            {90 * Degree, 10 * Degree, 0},
+		"axis = { tilt = 90, azimuth = 10, spin = 35 }": {90 * Degree, 10 * Degree, 35 * Degree},
+	} {
+		p, err := readText(strings.Replace(barrel, "gear = 96\n", "gear = 96\n"+line+"\n", 1))
+		if err != nil || p.Axis == nil || *p.Axis != want {
+			t.Fatalf("%s: read %v, error %v", line, p.Axis, err)
+		}
+		p.Axis.Tilt = 80 * Degree // so that it is written anew
+		if text := written(t, p); !strings.Contains(text, strings.Replace(line, "90", "80", 1)) {
+			t.Errorf("%s with a tilt of 80 is written as\n%s", line, text)
 		}
 	}
 }

@@ -165,7 +165,11 @@ func (m *MaterialRef) pairs() []pair {
 }
 
 func (a *Axis) pairs() []pair {
-	return []pair{{"tilt", degrees(a.Tilt)}, {"azimuth", degrees(a.Azimuth)}}
+	list := []pair{{"tilt", degrees(a.Tilt)}, {"azimuth", degrees(a.Azimuth)}}
+	if a.Spin != 0 {
+		list = append(list, pair{"spin", degrees(a.Spin)})
+	}
+	return list
 }
 
 func (p *Plan) roughPairs() []pair {

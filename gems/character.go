@@ -1,5 +1,7 @@
 package gems
 
+import "math"
+
 // Character is how a material splits light, with its sign.
 type Character int
 
@@ -40,12 +42,19 @@ func (m *Material) Character() Character {
 	case len(m.Rays) == 2:
 		return UniaxialNegative
 	}
-	// tan²V = (α⁻² − β⁻²)/(β⁻² − γ⁻²) with V from gamma's direction to an optic axis
-	// (Born and Wolf, section 15.3); positive where V is under 45 degrees.
-	inverse := func(n float64) float64 { return 1 / (n * n) }
-	alpha, beta, gamma := inverse(p[0]), inverse(p[1]), inverse(p[2])
-	if alpha-beta < beta-gamma {
+	if p.OpticAngle() < 90 {
 		return BiaxialPositive
 	}
 	return BiaxialNegative
+}
+
+// OpticAngle returns the angle in degrees between the two optic axes, measured about the
+// direction of gamma: under 90 in a positive biaxial material, over 90 in a negative one.
+// Where two of the indices are equal it is 0 or 180, where all three are it is 0.
+//
+// tan²V = (α⁻² − β⁻²)/(β⁻² − γ⁻²) with V half the angle: Born and Wolf, section 15.3.
+func (p Principal) OpticAngle() float64 {
+	inverse := func(n float64) float64 { return 1 / (n * n) }
+	alpha, beta, gamma := inverse(p[0]), inverse(p[1]), inverse(p[2])
+	return 2 * math.Atan2(math.Sqrt(max(0, alpha-beta)), math.Sqrt(max(0, beta-gamma))) * 180 / math.Pi
 }

@@ -253,6 +253,52 @@ func TestPrintedCharacter(t *testing.T) {
 	}
 }
 
+// The optic angle follows from small differences of the indices, which vary from stone to
+// stone: it must lie within what is printed for the species.
+func TestPrintedOpticAngle(t *testing.T) {
+	const western = "table of minerals of the University of the Western Cape; read"
+	const rioClaro = "course on optical mineralogy of the state university at Rio Claro; read"
+	for _, row := range []struct {
+		key         string
+		least, most float64 // about gamma
+		source      string
+	}{
+		{"topaz", 48, 68, "mineralogiaoptica.es, page on topaz; read"},
+		{"spodumene", 54, 68, western},
+		{"chrysoberyl", 60, 80, "70 measured, 72 computed, an encyclopedia after mineral data bases; read; ±10 for the third decimal of the indices"},
+		{"peridot", 85, 95, rioClaro + ", forsterite 85 to 90 of either sign"},
+		{"epidote", 180 - 89, 180 - 69, rioClaro},
+		{"tanzanite", 0, 69, "microckscopic.ro, page on zoisite; read"},
+		{"andalusite", 180 - 86, 180 - 73, handbookAngle},
+		{"kyanite", 180 - 86, 180 - 78, handbookAngle},
+		{"sphene", 17, 40, handbookAngle},
+		{"orthoclase", 180 - 85, 180 - 35, handbookAngle},
+		{"iolite", 180 - 89, 180 - 35, handbookAngle},
+		{"diopside", 50, 64, handbookAngle},
+	} {
+		p, err := mustFind(t, row.key).Indices(LineD)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if got := p.OpticAngle(); got < row.least || got > row.most {
+			t.Errorf("%s: optic angle %.1f about gamma, printed %g to %g (%s)", row.key, got, row.least, row.most, row.source)
+		}
+	}
+	for _, row := range []struct {
+		p    Principal
+		want float64
+	}{
+		{Principal{1.5, 1.5, 1.5}, 0}, {Principal{1.5, 1.5, 1.6}, 0}, {Principal{1.5, 1.6, 1.6}, 180},
+		{Principal{1.5, math.Sqrt(2 / (1/2.25 + 1/2.56)), 1.6}, 90},
+	} {
+		if got := row.p.OpticAngle(); math.Abs(got-row.want) > 1e-6 {
+			t.Errorf("%v: optic angle %v, want %v (closed form)", row.p, got, row.want)
+		}
+	}
+}
+
+const handbookAngle = "2V of the usual mineral handbooks; from memory"
+
 func TestPrintedBirefringence(t *testing.T) {
 	for _, row := range []struct {
 		key             string

@@ -141,7 +141,7 @@ func silicates() []*Material {
 			Names: []string{"kunzite", "hiddenite", "triphane"},
 			Rays: []Dispersion{
 				fitted(1.66, 0.017, gemTable, gemTable),
-				fitted(1.666, 0.017, betaFromMemory, gemTable),
+				fitted(1.664, 0.017, betaFromAngle, gemTable),
 				fitted(1.676, 0.017, gemTable, gemTable),
 			},
 			Density: 3.18, DensityRange: Span{3.15, 3.21}, DensitySource: gemTable,
@@ -156,7 +156,7 @@ func silicates() []*Material {
 			Names: []string{"chrome diopside"},
 			Rays: []Dispersion{
 				fitted(1.675, 0.02, gemTable, gemTable),
-				fitted(1.684, 0.02, betaFromMemory, gemTable),
+				fitted(1.682, 0.02, betaFromMemory, gemTable),
 				fitted(1.701, 0.02, gemTable, gemTable),
 			},
 			Density: 3.29, DensityRange: Span{3.22, 3.38}, DensitySource: gemTable,

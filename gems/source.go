@@ -102,6 +102,8 @@ const (
 
 	handbooks      Source = "the usual gem and chemical handbooks; from memory, not checked"
 	betaFromMemory Source = "middle index from the usual gem handbooks; from memory, not checked"
+	betaFromAngle  Source = "middle index from the optic angle 2V, 54 to 68 degrees, in the table of minerals of the " +
+		"University of the Western Cape; computed"
 	schottMemory   Source = "Schott data sheet; from memory, not checked"
 	abbeFromMemory Source = "Abbe number from the tables of Landolt and Börnstein; from memory, not checked"
 

@@ -19,6 +19,7 @@ type Description struct {
 	// Index and Birefringence are nil where the D line lies outside the range.
 	Index         *float64   `json:"index"` // ordinary or mean
 	Birefringence *float64   `json:"birefringence"`
+	OpticAngle    *float64   `json:"optic_angle_deg"` // 2V, the acute angle between the axes of a biaxial material; else nil
 	Range         [2]float64 `json:"range_nm"`
 	Fitted        bool       `json:"fitted"` // over some of 400 to 700 nm
 
@@ -74,6 +75,11 @@ func (m *Material) Describe() Description {
 		p, _ := m.Indices(LineD)
 		birefringence := p.Birefringence()
 		d.Index, d.Birefringence = &n, &birefringence
+		if m.Character().Biaxial() {
+			angle := p.OpticAngle()
+			angle = min(angle, 180-angle)
+			d.OpticAngle = &angle
+		}
 	}
 	if m.Absorption != nil {
 		d.BodyColour, d.ColourSource = m.Absorption.Name, m.Absorption.Source
@@ -219,6 +225,10 @@ func (d Description) Entries() []Entry {
 	}
 	if d.Birefringence != nil && *d.Birefringence > 0 {
 		es = append(es, Entry{"birefringence", decimals(d.Birefringence, 4), ""})
+	}
+	if d.OpticAngle != nil {
+		es = append(es, Entry{"optic angle 2V", decimals(d.OpticAngle, 0) + "° between the optic axes, by the three indices",
+			"Born and Wolf, Principles of Optics, section 15.3; computed"})
 	}
 	if d.Density != nil {
 		value := short(*d.Density) + " g/cm³"

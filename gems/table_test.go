@@ -35,7 +35,7 @@ func TestPageOfTopaz(t *testing.T) {
 	}
 	for _, want := range []string{
 		"optic character: biaxial positive", "alpha index: 1.61900 at the sodium D line, fitted over 400 to 700 nm",
-		"dispersion: 0.0140 from B to G, Abbe number 75.7", "birefringence: 0.0080", "density: 3.53 g/cm³ (3.5 to 3.57)",
+		"dispersion: 0.0140 from B to G, Abbe number 75.7", "birefringence: 0.0080", "optic angle 2V: 60° between the optic axes, by the three indices", "density: 3.53 g/cm³ (3.5 to 3.57)",
 		"hardness: 8 on Mohs's scale", "cleavage: perfect basal {001}", "body colour: as if colourless",
 	} {
 		if !slices.Contains(page, want) {

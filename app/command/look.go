@@ -289,7 +289,7 @@ func (l *lookCommand) report(s *subject, scene trace.Scene, result *trace.Result
 		HeadDeg:      l.Head,
 		Polarisation: "full",
 	}
-	report.Arranged = append(report.Arranged, l.arranged()...)
+	report.Arranged = append(report.Arranged, l.arranged(s)...)
 	if l.Below > 0 {
 		report.Arranged = append(report.Arranged, fmt.Sprintf("luminance %g below", l.Below))
 	}

@@ -24,7 +24,7 @@ type sceneFlags struct {
 	Ground     string   `type:"word" placeholder:"R" help:"Diffuse ground under the stone that sends back this share of light, 0 to 1: white paper is 0.8 or so."`
 	Setting    string   `type:"word" placeholder:"R[,OPEN]" help:"Diffuse wall right behind the pavilion that sends back this share of light; OPEN is the share of the pavilion's depth left open at the culet."`
 	Body       string   `type:"word" placeholder:"COLOUR:MM" help:"Body colour #rrggbb as seen through so many mm of daylight; COLOUR/COLOUR for ordinary and extraordinary ray."`
-	Axis       string   `type:"word" placeholder:"TILT,AZIM" help:"Direction of the optic axis of a uniaxial stone, in degrees from the table's normal and around it: both its rays are followed."`
+	Axis       string   `type:"word" placeholder:"TILT,AZIM[,SPIN]" help:"How the crystal lies in the stone: both rays of a doubly refracting stone are followed. Direction of the optic axis, of a biaxial stone of the acute bisectrix, in degrees from the table's normal and around it; SPIN turns the plane of the two optic axes about the bisectrix, from the plane that holds the table's normal (0). plan takes the plan's axis."`
 	Light      string   `default:"even" type:"word" placeholder:"NAME" help:"The light: ${lights}, or the path of a .hdr panorama (${default})."`
 	Illuminant string   `type:"word" placeholder:"NAME" help:"Another spectrum for the light: ${illuminants}."`
 	Zenith     string   `type:"word" placeholder:"ELEV,AZIM" help:"Where the light's zenith stands, in degrees over the picture's plane and around it from up, anticlockwise; without it the eye."`
@@ -92,13 +92,12 @@ func (f *sceneFlags) scene(library *gems.Library, s *subject) (trace.Scene, erro
 		}
 	}
 	if f.Axis != "" {
-		v, err := readNumbers("--axis", f.Axis, 2, 2)
+		a, err := f.readAxis(s)
 		if err != nil {
 			return scene, err
 		}
-		sinT, cosT := math.Sincos((facets.Angle(v[0]) * facets.Degree).Radians())
-		sinA, cosA := math.Sincos((facets.Angle(v[1]) * facets.Degree).Radians())
-		scene.Axis = &mgl64.Vec3{sinT * cosA, sinT * sinA, cosT}
+		axis, plane := a.Directions()
+		scene.Axis, scene.Plane = &axis, &plane
 	}
 	if f.Body != "" {
 		a, err := readBody(f.Body)
@@ -112,9 +111,52 @@ func (f *sceneFlags) scene(library *gems.Library, s *subject) (trace.Scene, erro
 	return scene, nil
 }
 
+// readAxis reads --axis.
+func (f *sceneFlags) readAxis(s *subject) (facets.Axis, error) {
+	if f.Axis == "plan" {
+		if s.axis == nil {
+			return facets.Axis{}, commandFaultf("--axis plan: the plan names no axis; write axis = { tilt = 90, azimuth = 0 } " +
+				"into it, or give the angles here")
+		}
+		return *s.axis, nil
+	}
+	v, err := readNumbers("--axis", f.Axis, 2, 3)
+	if err != nil {
+		return facets.Axis{}, err
+	}
+	for _, degrees := range v {
+		if math.Abs(degrees) > 360 {
+			return facets.Axis{}, commandFaultf("--axis %q: %g is out of range; give degrees, -360 to 360", f.Axis, degrees)
+		}
+	}
+	v = append(v, 0)
+	return facets.Axis{Tilt: facets.Angle(v[0]) * facets.Degree, Azimuth: facets.Angle(v[1]) * facets.Degree,
+		Spin: facets.Angle(v[2]) * facets.Degree}, nil
+}
+
+// axisWords says how the crystal lies in the stone.
+func (f *sceneFlags) axisWords(s *subject) string {
+	a, err := f.readAxis(s)
+	if err != nil {
+		return ""
+	}
+	words := fmt.Sprintf("%.6g, %.6g °", a.Tilt.Degrees(), a.Azimuth.Degrees())
+	switch c := s.material.Character(); {
+	case c.Uniaxial():
+		return "optic axis " + words
+	case c.Biaxial():
+		words = fmt.Sprintf("acute bisectrix %s, plane of the optic axes turned by %.6g °", words, a.Spin.Degrees())
+		if angle := s.material.Describe().OpticAngle; angle != nil {
+			words += fmt.Sprintf(", the two %.0f ° apart", *angle)
+		}
+		return words
+	}
+	return "optic axis " + words + " without effect in a singly refracting stone"
+}
+
 // arranged says in words what the flags put around the stone, beyond the surroundings
 // that have a column of their own.
-func (f *sceneFlags) arranged() (words []string) {
+func (f *sceneFlags) arranged(s *subject) (words []string) {
 	add := func(asked bool, format string, args ...any) {
 		if asked {
 			words = append(words, fmt.Sprintf(format, args...))
@@ -128,7 +170,9 @@ func (f *sceneFlags) arranged() (words []string) {
 	wall, open, partly := strings.Cut(f.Setting, ",")
 	add(f.Setting != "", "a wall behind the pavilion that sends back %s", wall)
 	add(partly, "open over %s of its depth", open)
-	add(f.Axis != "", "optic axis %s °", f.Axis)
+	if f.Axis != "" {
+		words = append(words, f.axisWords(s))
+	}
 	add(f.Illuminant != "", "spectrum %s", f.Illuminant)
 	add(f.Zenith != "", "zenith of the light %s °", f.Zenith)
 	add(f.Distance > 0, "eye %g mm away", f.Distance)

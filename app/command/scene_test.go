@@ -86,6 +86,30 @@ func TestScene(t *testing.T) {
 	if text := runCommand(quick("look", "--axis", "90,0")...).stdout; !strings.Contains(text, "at its index 1.7600") || !strings.Contains(text, "34.62°") {
 		t.Errorf("the critical angle of the lower index is not told: %s", text) // n_e 1.76000 of Malitson & Dodge 1972: asin(1/n)
 	}
+	three := func(flags ...string) string {
+		t.Helper()
+		return runCommand(quick(append([]string{"look", "--in", "air", "--material", "topaz"}, flags...)...)...).stdout
+	}
+	text := three("--axis", "90,10,35")
+	for _, want := range []string{
+		"acute bisectrix 90, 10 °, plane of the optic axes turned by 35 °, the two 60 ° apart",
+		"at its index 1.6190", "at its index 1.6210", "at its index 1.6270", "38.15°", // asin(1/1.619), on which warnings rest
+	} {
+		if !strings.Contains(text, want) {
+			t.Errorf("of topaz %q is not told: %s", want, text)
+		}
+	}
+	if strings.Contains(text, "as if singly refracting") || !strings.Contains(three(), "as if singly refracting") {
+		t.Error("whether topaz is followed as doubly refracting must be told right")
+	}
+	plan, err := os.ReadFile("../../testdata/plans/round.toml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	oriented := file(t, "oriented.toml", strings.Replace(string(plan), "gear = 96\n", "gear = 96\naxis = { tilt = 90, azimuth = 10, spin = 35 }\n", 1))
+	if text := three("--axis", "plan", oriented); !strings.Contains(text, "acute bisectrix 90, 10 °, plane of the optic axes turned by 35 °") {
+		t.Errorf("the plan's axis is not taken: %s", text)
+	}
 	room := look("--light", "room", "--head", "0")
 	if room.Lit.Sum == bare.Lit.Sum || !(room.Lit.Sum > 0) {
 		t.Errorf("in a room %v is seen", room.Lit)
@@ -135,7 +159,11 @@ func TestSceneFaults(t *testing.T) {
 		{[]string{"--setting", "0.5,0.5,0.5"}, "1 or 2 numbers"},
 		{[]string{"--body", "purple:3"}, "#rrggbb"},
 		{[]string{"--body", "#102030"}, "millimetres"},
-		{[]string{"--axis", "10"}, "2 numbers"},
+		{[]string{"--axis", "10"}, "2 or 3 numbers"},
+		{[]string{"--axis", "1,2,3,4"}, "2 or 3 numbers"},
+		{[]string{"--axis", "90,1e9"}, "-360 to 360"},
+		{[]string{"--axis", "90,inf"}, "-360 to 360"},
+		{[]string{"--axis", "plan"}, "names no axis"},
 		{[]string{"--colour", "--wavelength", "500"}, "colour"},
 		{[]string{"--distance", "2"}, "too close"},
 		{[]string{"--dish", "water,"}, "--dish"},

@@ -31,6 +31,7 @@ type subject struct {
 	material *gems.Material // nil where nothing says what the stone is made of
 	measures facets.Measures
 	rough    *facets.RoughRef // nil where the plan names none
+	axis     *facets.Axis     // likewise
 	folder   string           // of the plan, where the files it names lie
 }
 
@@ -163,7 +164,8 @@ func (f *subjectFlags) planned(c call, plan *facets.Plan) (*subject, error) {
 	for _, gap := range solution.Gaps {
 		c.warn("%s", gapWords(gap))
 	}
-	return &subject{name: plan.Name, stone: solution.Stone, material: material, rough: plan.Rough, folder: filepath.Dir(plan.File)}, nil
+	return &subject{name: plan.Name, stone: solution.Stone, material: material, rough: plan.Rough, axis: plan.Axis,
+		folder: filepath.Dir(plan.File)}, nil
 }
 
 // materialOf returns what the flag, or else the plan, says that the stone is made of.
