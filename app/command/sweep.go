@@ -33,6 +33,7 @@ type sweepFlags struct {
 	List  string   `type:"word" placeholder:"FILE" help:"Sweep over the lines of a file, each with what would stand after the command: a plan, flags, --over. Flags beside --list hold for all lines."`
 	Shard string   `type:"word" placeholder:"K/N" help:"Do part K of N of a sweep, K from 1, and write it under --out. Parts may run on any machines, in any order, more than once; what was stopped goes on."`
 	Merge string   `type:"word" placeholder:"DIR" help:"Put the parts of a sweep in this folder together; the results are the same bytes for any N."`
+	CSV   bool     `name:"csv" help:"Print the results as CSV."`
 	Mixed bool     `help:"With --merge, take parts from different builds of the program or kinds of processor, whose last digits may differ."`
 }
 
@@ -63,7 +64,7 @@ type sweeping struct {
 func newSweeping(c call, parser *kong.Kong, l *line, k *kong.Context) *sweeping {
 	s := &sweeping{call: c, parser: parser, line: l, verb: k.Selected().Name, materials: materialsFile(l.Materials), digests: map[string]string{}}
 	subject, flags := s.parsed()
-	if flags == nil || !flags.asked() {
+	if flags == nil || !flags.asked() && !(s.verb == "look" && flags.CSV) { // one look as CSV is a sweep of one
 		return nil
 	}
 	s.flags, s.plan, s.given = *flags, subject.Plan, givenWords(k)
@@ -552,9 +553,12 @@ const (
 // are written already.
 func (s *sweeping) deliver(results *sweep.Results) error {
 	if s.out == "" {
-		write := results.WriteTable
-		if s.json {
+		write := func(w io.Writer) error { return s.print(w, results) }
+		switch {
+		case s.json:
 			write = results.WriteLines
+		case s.flags.CSV:
+			write = results.WriteTable
 		}
 		if err := write(s.env.Stdout); err != nil { // printed even where jobs failed
 			return ownFault(fmt.Errorf("the results cannot be written: %w", err))

@@ -47,7 +47,7 @@ func engineFolder(t *testing.T) (folder, want string) {
 		if err := os.WriteFile(filepath.Join(folder, name), []byte(mustRead(t, p)), 0o644); err != nil {
 			t.Fatal(err)
 		}
-		fmt.Fprintf(&list, "%s --pixels 100 --over tilt=-20..20/20 --over material=quartz,beryl\n", name)
+		fmt.Fprintf(&list, "%s --pixels 60 --error 0.002 --over tilt=-20..20/20 --over material=quartz,beryl\n", name)
 	}
 	if err := os.WriteFile(filepath.Join(folder, "jobs.txt"), []byte(list.String()), 0o644); err != nil {
 		t.Fatal(err)

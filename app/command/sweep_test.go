@@ -175,13 +175,47 @@ func TestSweepSaysWhatLookSays(t *testing.T) {
 			t.Errorf("job %d: %q, want words with %q", i+1, rows[i].Error, words)
 		}
 	}
-	table, err := csv.NewReader(strings.NewReader(runCommand(listed()...).stdout)).ReadAll()
+	table, err := csv.NewReader(strings.NewReader(runCommand(listed("--csv")...).stdout)).ReadAll()
 	if want := 1 + 3*3 + 2*3 + 2 + 3; err != nil || len(table) != want { // lines: a head, then one a surrounding or failure
 		t.Fatalf("the table has %d lines, %v; want %d", len(table), err, want)
 	}
 	returned := slices.Index(table[0], "ledger.returned")
 	if returned < 0 || table[1][returned] != exact(rows[0].Result.Media[0].Ledger.Returned) {
 		t.Errorf("the table begins with %q and %q", table[0], table[1])
+	}
+}
+
+// What is printed for people has a line for each surrounding, the settings that are not
+// the same for all, and the numbers of the rows.
+func TestSweepPrints(t *testing.T) {
+	sweepFolder(t)
+	o := runCommand(listed()...)
+	rows := sweepRows(t, runCommand(listed("--json")...).stdout)
+	lines := strings.Split(o.stdout, "\n")
+	if want := 1 + 3*3 + 2*3 + 2 + 3 + 3; len(lines) != want { // a head, the rows, and the words at the end
+		t.Fatalf("%d lines, want %d:\n%s", len(lines), want, o.stdout)
+	}
+	if got := strings.Fields(lines[0]); !slices.Equal(got[:4], []string{"job", "plan", "dish", "head"}) || strings.Contains(lines[0], "material") {
+		t.Errorf("the head is %q", lines[0])
+	}
+	air := rows[1].Result.Media[0]
+	for _, words := range []string{"2     tent.toml", "air", withError(air.Ledger.Returned, air.StandardError.Returned), withError(air.Ledger.Leaked, air.StandardError.Leaked)} {
+		if !strings.Contains(lines[4], words) {
+			t.Errorf("%q says nothing of %q", lines[4], words)
+		}
+	}
+	if !strings.Contains(o.stdout, "oil, in a dish") || strings.Count(o.stdout, "no result") != 2 {
+		t.Error(o.stdout)
+	}
+	found := runCommand("tune", "tent.toml", "--vary", "P=40..42", "--step", "1", "--over", "head=0,15")
+	if found.status != Done || strings.Count(found.stdout, "P 40.00° → 4") != 2 || !strings.Contains(found.stdout, "gain") {
+		t.Errorf("%s%s", found.stdout, found.stderr)
+	}
+	if field := runCommand("tune", "tent.toml", "--vary", "P=40..42,C=39..41", "--field", "2x2", "--error", "0.05", "--over", "head=0,15"); !strings.HasPrefix(field.stdout, "job,file,settings.error") {
+		t.Errorf("%s%s", field.stdout, field.stderr)
+	}
+	if one := runCommand(quick("look", "tent.toml", "--csv")...); one.status != Done || strings.Count(one.stdout, "\n") != 4 || !strings.HasPrefix(one.stdout, "job,file") {
+		t.Errorf("%s%s", one.stdout, one.stderr)
 	}
 }
 

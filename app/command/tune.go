@@ -36,7 +36,6 @@ type tuneCommand struct {
 	Keep    string `type:"word" placeholder:"FILE" help:"Remember in this file what was seen; a run that was stopped goes on from it, one that ended is shown again."`
 	Write   string `type:"word" placeholder:"FILE" help:"Write the plan that was found into this file (.toml), comments kept."`
 	Out     string `type:"word" placeholder:"DIR" help:"Write the pictures and tables of --field, --front or --tolerance into this folder; of a sweep the results, results.jsonl and results.csv."`
-	CSV     bool   `name:"csv" help:"Print the results as CSV."`
 	Seed    uint64 `default:"1" type:"number" placeholder:"N" help:"Seed of the random numbers; the same seed gives the same results (${default})."`
 	Workers int    `type:"number" least:"0" most:"1024" unit:"(0 for all cores)" placeholder:"N" help:"How many cores may trace, 0 to 1024; 0 for all (0)."`
 }
