@@ -60,7 +60,7 @@ type Look struct {
 	words    *words.Words
 	trace    tracing
 	settings trace.Settings
-	light    string       // that colour is seen under
+	lights   []string     // that colour is seen under, by column; replaced, never changed
 	reach    facets.Angle // of the strip
 	maps     [shownCount]*picture.ColourMap
 
@@ -148,7 +148,6 @@ const DefaultMapPixels = 300
 func NewLook(do func(func()), onChange func(Change)) (*Look, error) {
 	l := &Look{
 		Row:      [Rows]Shown{Shown(trace.Returned), Shown(trace.Leaked)},
-		light:    "room",
 		reach:    StripRange,
 		do:       do,
 		onChange: onChange,
@@ -166,6 +165,7 @@ func NewLook(do func(func()), onChange func(Change)) (*Look, error) {
 			return nil, err
 		}
 		l.Around = append(l.Around, Around{Medium: m})
+		l.lights = append(l.lights, "room")
 	}
 	for q := range l.maps {
 		l.maps[q] = colourMap(Shown(q))
@@ -185,7 +185,7 @@ func colourMap(s Shown) *picture.ColourMap {
 // Show asks for the maps of another stone. solve is called once or more often, on
 // another goroutine.
 func (l *Look) Show(solve func() (Subject, error)) {
-	l.latest = request{solve: solve, settings: l.settings, around: l.Around, extras: extrasFor(l.Row, l.light), reach: l.reach}
+	l.latest = request{solve: solve, settings: l.settings, around: l.Around, extras: extrasFor(l.Row, l.lights), reach: l.reach}
 	l.restart()
 }
 
@@ -343,21 +343,42 @@ func (l *Look) trail(ctx context.Context, r *run, row [Rows]Shown) error {
 	return l.traceStrip(ctx, strip, func(s *Strip) { l.do(func() { l.rocked(r, s) }) })
 }
 
-// traceExtras gathers what the fast maps do not hold, and hands it over as it comes.
+// traceExtras gathers what the fast maps do not hold, one light after the other, and hands
+// it over as it comes. Columns whose light's turn has not come have no map.
 func (l *Look) traceExtras(ctx context.Context, scene trace.Scene, q request, hand func(*trace.Result, bool)) error {
-	settings, err := q.extras.settings(q.settings)
-	if err != nil {
-		return err
-	}
-	seen, err := l.trace(ctx, scene, settings, func(seen *trace.Result) {
-		if ctx.Err() == nil {
-			hand(seen, false)
+	whole := &trace.Result{Columns: make([]trace.Column, len(q.around))}
+	parties := q.extras.parties(len(q.around))
+	for k, party := range parties {
+		settings, err := q.extras.settings(q.settings, party.light)
+		if err != nil {
+			return err
 		}
-	})
-	if err == nil {
-		hand(seen, true)
+		part := scene
+		part.Surroundings = nil
+		for _, j := range party.columns {
+			part.Surroundings = append(part.Surroundings, scene.Surroundings[j])
+		}
+		with := func(seen *trace.Result) *trace.Result {
+			together := *seen
+			together.Columns = slices.Clone(whole.Columns)
+			together.Done = (float64(k) + seen.Done) / float64(len(parties))
+			for i, j := range party.columns {
+				together.Columns[j] = seen.Columns[i]
+			}
+			return &together
+		}
+		seen, err := l.trace(ctx, part, settings, func(seen *trace.Result) {
+			if ctx.Err() == nil {
+				hand(with(seen), false)
+			}
+		})
+		if err != nil {
+			return err
+		}
+		whole = with(seen)
+		hand(whole, k == len(parties)-1)
 	}
-	return err
+	return nil
 }
 
 // rocked takes a strip, as far as it has come.

@@ -3,6 +3,7 @@ package model
 import (
 	"image"
 	"math"
+	"slices"
 
 	"pavilight/app/picture"
 	"pavilight/app/words"
@@ -64,17 +65,17 @@ const expose = 2.0 / 3
 // that the fast tracer knows.
 type extras struct {
 	paths, colour bool
-	light         string // of the colour; empty without
+	lights        []string // of the colour, by column; nil without
 }
 
 // extrasFor returns what the rows need.
-func extrasFor(row [Rows]Shown, light string) (e extras) {
+func extrasFor(row [Rows]Shown, lights []string) (e extras) {
 	for _, s := range row {
 		e.paths = e.paths || s == PathLength
 		e.colour = e.colour || s == TrueColour
 	}
 	if e.colour {
-		e.light = light
+		e.lights = lights
 	}
 	return e
 }
@@ -83,7 +84,7 @@ func (e extras) any() bool { return e.paths || e.colour }
 
 // cover reports whether these are enough for those that are wanted.
 func (e extras) cover(wanted extras) bool {
-	return (e.paths || !wanted.paths) && (!wanted.colour || e.colour && e.light == wanted.light)
+	return (e.paths || !wanted.paths) && (!wanted.colour || e.colour && slices.Equal(e.lights, wanted.lights))
 }
 
 // When the run for path length and colour stops: at an error of the ledger, which is not
@@ -93,11 +94,33 @@ const (
 	colourRays  = 32
 )
 
-// settings returns those of the run that gathers the extras.
-func (e extras) settings(s trace.Settings) (trace.Settings, error) {
+// party is the columns that are seen under one light, which one run gathers.
+type party struct {
+	light   string // empty where no colour is wanted
+	columns []int
+}
+
+// parties returns the columns by their light, in the order of their first.
+func (e extras) parties(columns int) (all []party) {
+	for j := range columns {
+		light := ""
+		if e.colour {
+			light = e.lights[j]
+		}
+		k := slices.IndexFunc(all, func(p party) bool { return p.light == light })
+		if k < 0 {
+			k, all = len(all), append(all, party{light: light})
+		}
+		all[k].columns = append(all[k].columns, j)
+	}
+	return all
+}
+
+// settings returns those of the run that gathers the extras under one light.
+func (e extras) settings(s trace.Settings, name string) (trace.Settings, error) {
 	s.Paths, s.Colour, s.Error = e.paths, e.colour, max(s.Error, extrasError)
 	if e.colour {
-		light, err := findLight(e.light)
+		light, err := findLight(name)
 		if err != nil {
 			return s, err
 		}
@@ -131,16 +154,30 @@ func LightName(name string) words.Key {
 // LightNames lists the lights that the stone can be seen under.
 func LightNames() []string { return trace.LightNames() }
 
-// Light returns the name of the light that colour is seen under.
-func (l *Look) Light() string { return l.light }
+// Lights returns the names of the lights that colour is seen under, by column.
+func (l *Look) Lights() []string { return slices.Clone(l.lights) }
 
-// SetLight chooses the light that colour is seen under.
-func (l *Look) SetLight(name string) error {
+// OneLight returns the light of all columns, false where they differ.
+func (l *Look) OneLight() (string, bool) {
+	for _, name := range l.lights {
+		if name != l.lights[0] {
+			return "", false
+		}
+	}
+	return l.lights[0], true
+}
+
+// SetLight chooses the light that colour is seen under in the given columns.
+func (l *Look) SetLight(name string, columns ...int) error {
 	if _, err := findLight(name); err != nil {
 		return err
 	}
-	if name != l.light {
-		l.light = name
+	lights := slices.Clone(l.lights)
+	for _, j := range columns {
+		lights[j] = name
+	}
+	if !slices.Equal(lights, l.lights) {
+		l.lights = lights
 		l.wantExtras()
 		l.onChange(StateChanged)
 	}
@@ -148,11 +185,11 @@ func (l *Look) SetLight(name string) error {
 }
 
 // ShowsColour reports whether a row shows true colour.
-func (l *Look) ShowsColour() bool { return extrasFor(l.Row, l.light).colour }
+func (l *Look) ShowsColour() bool { return extrasFor(l.Row, l.lights).colour }
 
 // wantExtras traces anew if the rows need what is neither known nor under way.
 func (l *Look) wantExtras() {
-	wanted := extrasFor(l.Row, l.light)
+	wanted := extrasFor(l.Row, l.lights)
 	l.latest.extras = wanted
 	known := !wanted.any() || l.Frame != nil && l.Frame.Seen != nil && l.Frame.extras.cover(wanted) ||
 		l.running != nil && !l.stopped && l.running.request.extras.cover(wanted)
@@ -169,7 +206,7 @@ func (l *Look) paintRow(f *Frame, i int) {
 		from = f.Seen
 	}
 	f.Fields[i], f.Late[i], f.Most[i] = nil, true, 1
-	if from == nil || !plain && !f.extras.cover(extrasFor([Rows]Shown{f.Row[i], f.Row[i]}, f.extras.light)) {
+	if from == nil || !plain && !f.extras.cover(extrasFor([Rows]Shown{f.Row[i], f.Row[i]}, f.extras.lights)) {
 		for _, dst := range f.Pictures[i] {
 			clear(dst.Pix) // nothing is known yet
 		}
@@ -183,6 +220,9 @@ func (l *Look) paintRow(f *Frame, i int) {
 	for j := range from.Columns {
 		m, dst := from.Columns[j].Map, f.Pictures[i][j]
 		switch {
+		case m == nil: // its light's turn has not come
+			clear(dst.Pix)
+			continue
 		case plain:
 			f.Fields[i][j] = m.Field(entry)
 			picture.Paint(dst, f.Fields[i][j], m.Pixels, l.maps[f.Row[i]])
@@ -194,7 +234,7 @@ func (l *Look) paintRow(f *Frame, i int) {
 			}
 			picture.Paint(dst, scaled, m.Pixels, l.maps[f.Row[i]])
 		default:
-			f.Fields[i][j] = paintColour(dst, m, f.extras.light)
+			f.Fields[i][j] = paintColour(dst, m, f.extras.lights[j])
 		}
 		clearOutside(dst, f.Fields[i][j])
 	}

@@ -19,7 +19,7 @@ func TestColourComesAfterTheMaps(t *testing.T) {
 	synctest.Test(t, func(t *testing.T) {
 		s := newStand(t)
 		s.SetRow(1, TrueColour)
-		if err := s.SetLight("lamps"); err != nil {
+		if err := s.SetLight("lamps", 0, 1, 2); err != nil {
 			t.Fatal(err)
 		}
 		s.Show(stoneNamed("one"))
@@ -89,7 +89,7 @@ func TestOnlyWhatIsNotKnownIsTraced(t *testing.T) {
 		if runs() != 3 || s.Late(0) {
 			t.Errorf("%d runs to see a path length again, late %v", runs(), s.Late(0))
 		}
-		if err := s.SetLight("ring"); err != nil || runs() != 3 {
+		if err := s.SetLight("ring", 0, 1, 2); err != nil || runs() != 3 {
 			t.Errorf("a light for no colour: %v, %d runs", err, runs())
 		}
 		s.SetRow(1, TrueColour)
@@ -106,8 +106,49 @@ func TestOnlyWhatIsNotKnownIsTraced(t *testing.T) {
 		if runs() != before || s.Late(1) {
 			t.Errorf("colour that is known: %d runs more, late %v", runs()-before, s.Late(1))
 		}
-		if err := s.SetLight("moon"); err == nil || s.Light() != "ring" {
-			t.Errorf("an unknown light: %v, now %s", err, s.Light())
+		if err := s.SetLight("moon", 0); err == nil || s.Lights()[0] != "ring" {
+			t.Errorf("an unknown light: %v, now %s", err, s.Lights())
+		}
+	})
+}
+
+// Each column has its own light: columns under one are traced in one run, and another's
+// stay dark until their turn.
+func TestLightsByColumn(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		s := newStand(t)
+		s.SetRow(1, TrueColour)
+		if err := s.SetLight("lamps", 1); err != nil {
+			t.Fatal(err)
+		}
+		if _, one := s.OneLight(); one || s.Lights()[1] != "lamps" || s.Lights()[0] == "lamps" {
+			t.Errorf("the lights are %v", s.Lights())
+		}
+		s.Show(stoneNamed("one"))
+		s.window.settle()
+		s.report(t, 1)
+		for k, want := range []struct {
+			light   string
+			columns []int
+		}{{s.Lights()[0], []int{0, 2}}, {"lamps", []int{1}}} {
+			asked, scene := s.engine.asked[k+1], s.engine.scenes[k+1]
+			if asked.Light == nil || asked.Light.Name != want.light || len(scene.Surroundings) != len(want.columns) {
+				t.Fatalf("run %d: under %v, %d columns", k, asked.Light, len(scene.Surroundings))
+			}
+			for i, j := range want.columns {
+				if scene.Surroundings[i].Medium != s.Around[j].Medium {
+					t.Errorf("run %d traces %s in place of column %d", k, scene.Surroundings[i].Medium.Name, j)
+				}
+			}
+			time.Sleep(time.Second) // the pace lets the next one through
+			s.report(t, 0.5)
+			if known := s.Frame.Seen.Columns[1].Map != nil; known != (k == 1) || s.Frame.Seen.Columns[2].Map == nil {
+				t.Errorf("run %d: column 1 known %v, column 2 %v", k, known, s.Frame.Seen.Columns[2].Map != nil)
+			}
+			s.report(t, 1)
+		}
+		if !s.Frame.Final || s.Late(1) {
+			t.Errorf("at the end: final %v, late %v", s.Frame.Final, s.Late(1))
 		}
 	})
 }
@@ -134,8 +175,8 @@ func TestExtrasOfARealStone(t *testing.T) {
 		t.Fatal(err)
 	}
 	row := [Rows]Shown{PathLength, TrueColour}
-	e := extrasFor(row, "lamps")
-	settings, err := e.settings(trace.Settings{Pixels: 48, Seed: 1, Workers: 1})
+	e := extrasFor(row, []string{"lamps", "lamps", "lamps"})
+	settings, err := e.settings(trace.Settings{Pixels: 48, Seed: 1, Workers: 1}, "lamps")
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -29,6 +29,7 @@ type grid struct {
 	media    [columns]*chooser
 	indices  [columns]*line
 	critical [columns]*line
+	shining  [columns]*line // the light of true colour, where a row shows that
 	row      [model.Rows]*chooser
 	meaning  [model.Rows]*wrapped
 	maps     [model.Rows][columns]*mapView
@@ -44,7 +45,9 @@ type grid struct {
 	pixels   int     // of a map's edge on the screen, as last asked for
 	onPixels func(int)
 	onTilt   func(facets.Angle)
-	onRow    func() // a row shows something else
+	onRow    func()                            // a row shows something else
+	lights   func(column int) []*fyne.MenuItem // of true colour
+	onReach  func()                            // the strip rocks as far as it was told
 }
 
 // newGrid builds the grid; stray takes the keys that it has no use for.
@@ -55,7 +58,8 @@ func newGrid(bench *model.Bench, stray func(*fyne.KeyEvent)) *grid {
 		g.media[j] = newChooser(theme.SizeNameSubHeadingText, func() []*fyne.MenuItem { return g.mediaItems(j) })
 		g.indices[j] = newLine(colourDim, theme.SizeNameText)
 		g.critical[j] = newLine(colourDim, theme.SizeNameText)
-		g.add(g.media[j], g.indices[j], g.critical[j])
+		g.shining[j] = newLine(colourDim, theme.SizeNameCaptionText)
+		g.add(g.media[j], g.indices[j], g.critical[j], g.shining[j])
 	}
 	for i := range model.Rows {
 		g.row[i] = newChooser(theme.SizeNameText, func() []*fyne.MenuItem { return g.quantityItems(i) })
@@ -81,7 +85,13 @@ func newGrid(bench *model.Bench, stray func(*fyne.KeyEvent)) *grid {
 	g.rocking = newLine(theme.ColorNameForeground, theme.SizeNameText).bold()
 	g.rocking.setText(g.words.Say("Rocked ±"))
 	g.reach = newNumberField(readDegrees, func(v float64) string { return g.words.Decimal(strconv.FormatFloat(v, 'f', -1, 64)) }, 1)
-	g.reach.commit = func(v float64) error { return bench.Look.SetStripRange(facets.Angle(v) * facets.Degree) }
+	g.reach.commit = func(v float64) error {
+		err := bench.Look.SetStripRange(facets.Angle(v) * facets.Degree)
+		if err == nil && g.onReach != nil {
+			g.onReach()
+		}
+		return err
+	}
 	g.reach.show(bench.Look.StripRange().Degrees())
 	g.rocked = newWrapped(colourDim, theme.SizeNameCaptionText)
 	g.add(g.strip, g.rocking, g.reach, g.rocked)
@@ -104,7 +114,7 @@ func (g *grid) enlarge(which *[2]int) {
 	all := which == nil
 	for j := range columns {
 		mine := all || which[1] == j
-		for _, o := range []fyne.CanvasObject{g.media[j], g.indices[j], g.critical[j]} {
+		for _, o := range []fyne.CanvasObject{g.media[j], g.indices[j], g.critical[j], g.shining[j]} {
 			setVisible(o, mine)
 		}
 		setVisible(g.bars[j], all)
@@ -132,7 +142,9 @@ func (g *grid) layoutLarge(size fyne.Size) {
 	name := g.media[j].MinSize()
 	place(g.media[j], x-3, 0, name.Width, name.Height)
 	place(g.indices[j], x+name.Width+4, 2, max(0, edge-name.Width-4), name.Height)
-	place(g.critical[j], x, name.Height, edge, g.critical[j].MinSize().Height)
+	under := g.critical[j].MinSize().Height
+	place(g.critical[j], x, name.Height, edge, under)
+	place(g.shining[j], x, name.Height+under, edge, g.shining[j].MinSize().Height)
 	row := g.row[i].MinSize()
 	place(g.row[i], left-3, head, min(row.Width, gutter), row.Height)
 	place(g.meaning[i], left, head+row.Height+2, gutter-12, edge-row.Height-2)
@@ -168,7 +180,13 @@ func (g *grid) mediaItems(column int) []*fyne.MenuItem {
 		g.bench.SetAround(column, model.Around{Medium: now.Medium, Dish: !now.Dish})
 	})
 	dish.Checked, dish.Disabled = now.Dish, now.Medium.Group != gems.Liquid
-	return append(items, fyne.NewMenuItemSeparator(), dish)
+	items = append(items, fyne.NewMenuItemSeparator(), dish)
+	if g.lights != nil {
+		light := fyne.NewMenuItem(g.words.Say("Light of true colour"), nil)
+		light.ChildMenu = fyne.NewMenu("", g.lights(column)...)
+		items = append(items, light)
+	}
+	return items
 }
 
 // quantityItems lists what a row can show.
@@ -196,11 +214,17 @@ func (g *grid) refreshAll() {
 }
 
 func (g *grid) refreshHeadings() {
+	lights := g.bench.Look.Lights()
 	for j := range columns {
 		h := g.bench.Look.Heading(j)
 		g.media[j].setText(h.Medium)
 		g.indices[j].setText(h.Index)
 		g.critical[j].setText(h.Critical)
+		light := ""
+		if g.bench.Look.ShowsColour() {
+			light = g.words.Say("colour under: %s", model.LightName(lights[j]))
+		}
+		g.shining[j].setText(light)
 	}
 	for i := range model.Rows {
 		s := g.bench.Look.Row[i]
@@ -320,7 +344,11 @@ func (g *grid) MinSize([]fyne.CanvasObject) fyne.Size {
 }
 
 func (g *grid) headHeight() float32 {
-	return g.media[0].MinSize().Height + g.critical[0].MinSize().Height + 8
+	high := g.media[0].MinSize().Height + g.critical[0].MinSize().Height + 8
+	if g.bench.Look.ShowsColour() {
+		high += g.shining[0].MinSize().Height
+	}
+	return high
 }
 func (g *grid) barHeight() float32 { return 16 }
 
@@ -356,7 +384,9 @@ func (g *grid) Layout(_ []fyne.CanvasObject, size fyne.Size) {
 		name.Width = min(name.Width, edge)
 		place(g.media[j], x(j)-3, 0, name.Width, name.Height)
 		place(g.indices[j], x(j)+name.Width+4, 2, max(0, edge-name.Width-4), name.Height)
-		place(g.critical[j], x(j), name.Height, edge, g.critical[j].MinSize().Height)
+		under := g.critical[j].MinSize().Height
+		place(g.critical[j], x(j), name.Height, edge, under)
+		place(g.shining[j], x(j), name.Height+under, edge, g.shining[j].MinSize().Height)
 	}
 	y := head
 	for i := range model.Rows {

@@ -34,7 +34,7 @@ func TestRowsShowPathLengthAndColour(t *testing.T) {
 	if r.grid.maps[0][0].picture.Translucency == 0 {
 		t.Error("maps that are not known yet look as if they were")
 	}
-	choose(t, r.lightItems(), "small lamps")
+	choose(t, r.lightItems(0, 1, 2), "small lamps")
 	if !r.shining.Visible() || r.shines.text != "small lamps" {
 		t.Errorf("the light: offered %v, %q", r.shining.Visible(), r.shines.text)
 	}

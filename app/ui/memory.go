@@ -6,7 +6,9 @@ import (
 
 	"fyne.io/fyne/v2"
 
+	"pavilight/app/model"
 	"pavilight/app/words"
+	"pavilight/facets"
 )
 
 // fileMemory is what the program remembers from one run to the next. Everything
@@ -24,6 +26,9 @@ const (
 	recentKey    = "files.recent"
 	hintsKey     = "hints.seen"
 	languageKey  = "view.language"
+	roomKey      = "view.room"
+	rangeKey     = "look.range"  // of the strip, degrees
+	lightsKey    = "look.lights" // of true colour, by column
 )
 
 // The size of the window when it is opened for the first time.
@@ -46,6 +51,33 @@ func (m fileMemory) windowSize() fyne.Size {
 func (m fileMemory) keepWindowSize(s fyne.Size) {
 	m.prefs.SetFloat(widthKey, float64(s.Width))
 	m.prefs.SetFloat(heightKey, float64(s.Height))
+}
+
+// room is the one that was open last.
+func (m fileMemory) room() room {
+	if r := room(m.prefs.Int(roomKey)); r > lookRoom && r < rooms {
+		return r
+	}
+	return lookRoom
+}
+
+// recall gives the Look room what was set there in an earlier run; what is not sound is left
+// as it is.
+func (m fileMemory) recall(look *model.Look) {
+	if deg := m.prefs.Float(rangeKey); deg != 0 {
+		look.SetStripRange(facets.Angle(deg) * facets.Degree) // refuses what no strip can rock by
+	}
+	if names := m.prefs.StringList(lightsKey); len(names) == columns {
+		for j, name := range names {
+			look.SetLight(name, j) // refuses a light that there is not
+		}
+	}
+}
+
+// keepLook remembers what is set in the Look room.
+func (m fileMemory) keepLook(look *model.Look) {
+	m.prefs.SetFloat(rangeKey, look.StripRange().Degrees())
+	m.prefs.SetStringList(lightsKey, look.Lights())
 }
 
 func (m fileMemory) brightness() brightness {

@@ -31,6 +31,7 @@ func stages(started time.Time) func(string) {
 // started is called once the window is on the screen.
 func (w *window) started(path string) {
 	w.once("shown")
+	last := w.files.room()
 	w.enter(lookRoom)
 	w.bench.Begin() // something to look at, also while another plan is read
 	w.offerRecovered()
@@ -38,6 +39,7 @@ func (w *window) started(path string) {
 		w.open(path)
 		return
 	}
+	w.enter(last)
 	if !w.app.Preferences().Bool(hintsKey) {
 		w.app.Preferences().SetBool(hintsKey, true)
 		w.firstSteps()

@@ -2,6 +2,7 @@ package ui
 
 import (
 	"math"
+	"slices"
 	"strings"
 
 	"fyne.io/fyne/v2"
@@ -136,7 +137,9 @@ func (w *window) build() {
 	w.fault = w.troubleBox()
 	w.fault.Hide()
 
+	w.files.recall(w.bench.Look)
 	w.grid = newGrid(w.bench, w.strayKey)
+	w.grid.onReach = func() { w.files.keepLook(w.bench.Look) }
 	w.grid.onPixels = func(px int) { w.bench.Look.Adjust(func(s *trace.Settings) { s.Pixels = px }) }
 	degrees := func(set func(*trace.Settings, facets.Angle), most float64, refused words.Key, step float64) *numberField {
 		f := newNumberField(readDegrees, w.writeDegrees, step)
@@ -156,7 +159,8 @@ func (w *window) build() {
 	w.grid.reach.trouble = w.say
 	w.grid.onTilt = func(a facets.Angle) { w.say(w.setTilt(a.Degrees())) }
 	w.head = degrees(func(s *trace.Settings, a facets.Angle) { s.Head = a }, 60, "the half-angle of the viewer's head goes from 0° to %g°", 1)
-	w.shines = newChooser(theme.SizeNameText, w.lightItems)
+	w.shines = newChooser(theme.SizeNameText, func() []*fyne.MenuItem { return w.lightItems(0, 1, 2) })
+	w.grid.lights = func(column int) []*fyne.MenuItem { return w.lightItems(column) }
 	w.grid.onRow = w.refreshLight
 	w.turn = newNumberField(func(s string) (float64, error) { return model.ParseNumber(s, "") },
 		func(v float64) string { return w.words.Say("%.4g", v) }, 1)
@@ -326,6 +330,7 @@ func gap(width float32) fyne.CanvasObject {
 // enter opens a room.
 func (w *window) enter(r room) {
 	w.room = r
+	w.app.Preferences().SetInt(roomKey, int(r))
 	for k := range rooms {
 		w.doors[k].setOpen(k == r)
 	}
@@ -504,19 +509,28 @@ func (w *window) refreshLight() {
 	turn := s.View.Turn.Radians() / (2 * math.Pi) * float64(w.bench.Doc.Plan().Gear)
 	w.turn.show(turn)
 	w.light.setText(w.bench.Look.LightInWords())
-	w.shines.setText(w.words.Say(model.LightName(w.bench.Look.Light())))
+	one, ok := w.bench.Look.OneLight()
+	if ok {
+		w.shines.setText(w.words.Say(model.LightName(one)))
+	} else {
+		w.shines.setText(w.words.Say("several lights"))
+	}
 	setVisible(w.shining, w.bench.Look.ShowsColour())
 }
 
-// lightItems lists the lights that the stone can be seen under in true colour.
-func (w *window) lightItems() []*fyne.MenuItem {
+// lightItems lists the lights that the stone can be seen under in true colour, in the given
+// columns.
+func (w *window) lightItems(columns ...int) []*fyne.MenuItem {
 	var items []*fyne.MenuItem
+	now := w.bench.Look.Lights()
 	for _, name := range model.LightNames() {
 		item := w.item(model.LightName(name), nil, func() {
-			w.say(w.bench.Look.SetLight(name))
+			w.say(w.bench.Look.SetLight(name, columns...))
+			w.files.keepLook(w.bench.Look)
 			w.refreshLight()
+			w.grid.refreshHeadings()
 		})
-		item.Checked = name == w.bench.Look.Light()
+		item.Checked = !slices.ContainsFunc(columns, func(j int) bool { return now[j] != name })
 		items = append(items, item)
 	}
 	return items

@@ -86,7 +86,7 @@ func (r *rig) drain() {
 // until does the window's work until the condition holds.
 func (r *rig) until(t *testing.T, what string, done func() bool) {
 	t.Helper()
-	patience := time.After(20 * time.Second)
+	patience := time.After(90 * time.Second)
 	for !done() {
 		select {
 		case <-r.come:
