@@ -622,17 +622,19 @@ func killTuneWrite(t *testing.T, program string, kills int) tally {
 	})
 }
 
+// answer returns what a search printed but for the time that it took.
+func answer(out []byte) string {
+	a, rest, _ := strings.Cut(string(out), `"seconds"`)
+	_, b, _ := strings.Cut(rest, "\n")
+	return a + b
+}
+
 // killTuneKeep kills searches anywhere and begins them again with their record, until they
 // end; the end is that of a search that was never killed. A line of the record is one call
 // of the system, which no kill cuts in two, so none of these counts as within a write.
 func killTuneKeep(t *testing.T, program string, kills int) (n tally) {
 	folder := t.TempDir()
 	plan, seen := tent(t, folder, "quartz", ""), filepath.Join(folder, "seen")
-	answer := func(out []byte) string {
-		a, rest, _ := strings.Cut(string(out), `"seconds"`)
-		_, b, _ := strings.Cut(rest, "\n")
-		return a + b
-	}
 	began := time.Now()
 	out, err := exec.Command(program, tuneArgs(plan)...).Output()
 	if err != nil {
