@@ -102,8 +102,13 @@ func setVisible(o fyne.CanvasObject, visible bool) {
 }
 
 // headerLayout sets the plan at the left, the rooms in the middle of what the plan
-// leaves, and the progress at the right.
-type headerLayout struct{}
+// leaves, and the progress at the right. Where there is little room the progress is made
+// narrower, then the weight goes, which stands beside the stone, too, and then the title
+// is cut.
+type headerLayout struct{ title, weight *line }
+
+// headerAir lies between the parts of the header, at the least.
+const headerAir = 12
 
 // MinSize asks for the height alone and for as much width as the doors need.
 func (*headerLayout) MinSize(objects []fyne.CanvasObject) fyne.Size {
@@ -116,15 +121,49 @@ func (*headerLayout) MinSize(objects []fyne.CanvasObject) fyne.Size {
 }
 
 // Layout centres the doors on the window unless left or right press on them.
-func (*headerLayout) Layout(objects []fyne.CanvasObject, size fyne.Size) {
-	left, doors, right := objects[0].MinSize(), objects[1].MinSize(), objects[2].MinSize()
-	const air = 12
+func (h *headerLayout) Layout(objects []fyne.CanvasObject, size fyne.Size) {
+	doors, right := objects[1].MinSize(), objects[2].MinSize()
+	room := size.Width - doors.Width - right.Width - 2*headerAir // for the plan
+	h.title.most = 0
+	setVisible(h.weight, true)
+	if objects[0].MinSize().Width > room {
+		setVisible(h.weight, false)
+	}
+	if over := objects[0].MinSize().Width - room; over > 0 {
+		const least = 40
+		h.title.most = max(least, h.title.MinSize().Width-over)
+	}
+	left := objects[0].MinSize()
+	right.Width = min(progressUsual, max(right.Width, size.Width-doors.Width-left.Width-2*headerAir))
 	x := (size.Width - doors.Width) / 2
-	x = max(x, left.Width+air)
-	x = min(x, size.Width-right.Width-air-doors.Width)
-	place(objects[0], 0, (size.Height-left.Height)/2, max(0, min(left.Width, x-air)), left.Height)
+	x = max(x, left.Width+headerAir)
+	x = min(x, size.Width-right.Width-headerAir-doors.Width)
+	place(objects[0], 0, (size.Height-left.Height)/2, max(0, min(left.Width, x-headerAir)), left.Height)
 	place(objects[1], x, (size.Height-doors.Height)/2, doors.Width, doors.Height)
 	place(objects[2], size.Width-right.Width, (size.Height-right.Height)/2, right.Width, right.Height)
+}
+
+// progressUsual is the width of what a room is at, where there is room.
+const progressUsual = 360
+
+// progressLayout sets what a room is at, how far it is, and the button that stops it side by
+// side; the first takes what the others leave.
+type progressLayout struct{}
+
+// MinSize is that of a short line.
+func (*progressLayout) MinSize(objects []fyne.CanvasObject) fyne.Size {
+	stop := objects[2].MinSize()
+	return fyne.NewSize(150+8+50+8+stop.Width, stop.Height)
+}
+
+// Layout makes the second wider where there is room.
+func (l *progressLayout) Layout(objects []fyne.CanvasObject, size fyne.Size) {
+	const high, air, wide = 6, 8, 90
+	stop := objects[2].MinSize()
+	bar := min(wide, max(50, size.Width-stop.Width-2*air-190))
+	place(objects[2], size.Width-stop.Width, (size.Height-stop.Height)/2, stop.Width, stop.Height)
+	place(objects[1], size.Width-stop.Width-air-bar, (size.Height-high)/2, bar, high)
+	place(objects[0], 0, (size.Height-lineHeight())/2, max(0, size.Width-stop.Width-2*air-bar), lineHeight())
 }
 
 // squareLayout gives its first object a square of the full width, and the rest a

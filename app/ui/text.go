@@ -20,7 +20,8 @@ type line struct {
 	size    fyne.ThemeSizeName
 	style   fyne.TextStyle
 	align   fyne.TextAlign
-	natural bool // asks for the room that its text takes
+	natural bool    // asks for the room that its text takes
+	most    float32 // but no wider than this; 0 for any width
 }
 
 func newLine(colour fyne.ThemeColorName, size fyne.ThemeSizeName) *line {
@@ -72,8 +73,11 @@ func (r *lineRenderer) Objects() []fyne.CanvasObject { return []fyne.CanvasObjec
 
 func (r *lineRenderer) MinSize() fyne.Size {
 	size := fyne.MeasureText(r.l.text, theme.Size(r.l.size), r.l.style)
-	if !r.l.natural {
+	switch {
+	case !r.l.natural:
 		size.Width = 8
+	case r.l.most > 0:
+		size.Width = min(size.Width, r.l.most)
 	}
 	if r.l.text == "" {
 		size.Height = fyne.MeasureText("M", theme.Size(r.l.size), r.l.style).Height

@@ -32,6 +32,8 @@ type window struct {
 	tell   func(stage string) // of interest to scripts that drive the window
 
 	// header
+	header   *fyne.Container
+	headed   [3]int // letters of the words at its left when they were laid out
 	title    *line
 	material *chooser
 	width    *numberField
@@ -252,11 +254,9 @@ func (w *window) headerBar() fyne.CanvasObject {
 	for _, d := range w.doors {
 		doors.Add(d)
 	}
-	right := container.NewHBox(
-		container.NewCenter(container.NewGridWrap(fyne.NewSize(190, lineHeight()), w.state)),
-		container.NewCenter(container.NewGridWrap(fyne.NewSize(90, 6), w.progress)), w.stop)
-	bar := container.New(&headerLayout{}, left, doors, container.NewCenter(right))
-	return container.NewStack(ground(colourPane), container.New(layout.NewCustomPaddedLayout(4, 4, 14, 10), bar))
+	right := container.New(&progressLayout{}, w.state, w.progress, w.stop)
+	w.header, w.headed = container.New(&headerLayout{w.title, w.weight}, left, doors, right), [3]int{}
+	return container.NewStack(ground(colourPane), container.New(layout.NewCustomPaddedLayout(4, 4, 14, 10), w.header))
 }
 
 // planPane is the left one: the tiers, and what is wrong with the plan if anything is.
@@ -472,6 +472,16 @@ func (w *window) refreshFacts() {
 	facts := w.bench.Facts()
 	w.facts.show(facts)
 	w.weight.setText(w.bench.Weight())
+	w.fitHeader()
+}
+
+// fitHeader lays the header out anew where its words have become longer or shorter.
+func (w *window) fitHeader() {
+	now := [3]int{len(w.title.text), len(w.material.text), len(w.weight.text)}
+	if w.header != nil && now != w.headed {
+		w.headed = now
+		w.header.Refresh()
+	}
 }
 
 // refreshFrom shows where the returned light comes from.
