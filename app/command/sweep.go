@@ -237,16 +237,29 @@ func (s *sweeping) expandLine(words []string) error {
 		overs = append(overs, o)
 	}
 	given := givenWords(k)
+	all, shown := settingsOf(k)
+	values := make([]map[string]any, len(overs)) // what each word of a flag stands for
+	for i, o := range overs {
+		values[i] = map[string]any{}
+		for _, word := range o.Values {
+			k, err := s.parse(append(slices.Clone(given), "--"+o.Name+"="+word))
+			if err != nil {
+				return err
+			}
+			values[i][word] = flagNamed(k, o.Name).Target.Interface()
+		}
+	}
 	for _, plan := range plans {
-		for _, values := range sweep.Product(overs) {
+		for _, combination := range sweep.Product(overs) {
 			job := slices.Clone(given)
 			if plan != "" {
 				job = append(job, plan)
 			}
-			for i, v := range values {
-				job = append(job, "--"+overs[i].Name+"="+v)
+			for i, word := range combination {
+				job = append(job, "--"+overs[i].Name+"="+word)
+				all[overs[i].Name], shown[overs[i].Name] = values[i][word], values[i][word]
 			}
-			if err := s.add(job); err != nil {
+			if err := s.add(plan, job, all, shown); err != nil {
 				return err
 			}
 		}
@@ -254,16 +267,10 @@ func (s *sweeping) expandLine(words []string) error {
 	return nil
 }
 
-// add adds the job that words make.
-func (s *sweeping) add(words []string) error {
-	if len(s.jobs) == sweep.MostJobs {
-		return fmt.Errorf("more than %d jobs; cut the list into several sweeps", sweep.MostJobs)
-	}
-	k, err := s.parse(words)
-	if err != nil {
-		return err
-	}
-	shown, all := map[string]any{}, map[string]any{}
+// settingsOf returns the value of every flag that results depend on, and those that were
+// given.
+func settingsOf(k *kong.Context) (all, given map[string]any) {
+	all, given = map[string]any{}, map[string]any{}
 	for _, f := range k.Selected().Flags {
 		if !ofTheSweep(f.Name) {
 			all[f.Name] = f.Target.Interface()
@@ -271,26 +278,34 @@ func (s *sweeping) add(words []string) error {
 	}
 	for _, p := range k.Path {
 		if p.Flag != nil && !ofTheSweep(p.Flag.Name) {
-			shown[p.Flag.Name] = p.Flag.Target.Interface()
+			given[p.Flag.Name] = p.Flag.Target.Interface()
 		}
 	}
-	settings, err := json.Marshal(shown)
+	return all, given
+}
+
+// add adds a job: its plan, the words that make it, all its settings, and those that
+// were given.
+func (s *sweeping) add(plan string, words []string, all, given map[string]any) error {
+	if len(s.jobs) == sweep.MostJobs {
+		return fmt.Errorf("more than %d jobs; cut the list into several sweeps", sweep.MostJobs)
+	}
+	settings, err := json.Marshal(given)
 	if err != nil {
 		return err
 	}
 	files := map[string]string{}
-	subject, _ := s.parsed()
-	if subject.Plan == "" {
+	if plan == "" {
 		files["stone"] = "bundled" // or proportions, which are settings
 	}
-	for role, path := range s.inputs() {
+	for role, path := range s.inputs(plan, all) {
 		files[role] = s.fileDigest(path)
 	}
 	key, err := sweep.Key(s.verb, all, files)
 	if err != nil {
 		return err
 	}
-	s.jobs = append(s.jobs, sweep.Job{File: subject.Plan, Settings: settings, Key: key})
+	s.jobs = append(s.jobs, sweep.Job{File: plan, Settings: settings, Key: key})
 	s.words = append(s.words, words)
 	return nil
 }
@@ -335,46 +350,46 @@ func givenWords(k *kong.Context) (words []string) {
 	return words
 }
 
-// inputs returns the files that the job parsed last reads, by the part they play.
-func (s *sweeping) inputs() map[string]string {
+// inputs returns the files that a job reads, by the part they play.
+func (s *sweeping) inputs(plan string, settings map[string]any) map[string]string {
 	files := map[string]string{}
-	subject, _ := s.parsed()
-	if subject.Plan != "" {
-		files["stone"] = subject.Plan
+	if plan != "" {
+		files["stone"] = plan
 	}
 	if s.materials != "" {
 		files["materials"] = s.materials
 	}
-	lights := []string{s.line.Look.Light}
+	light, _ := settings["light"].(string)
+	lights := []string{light}
 	if s.verb == "tune" {
-		lights = splitList(s.line.Tune.Light)
-		if rough := s.roughFile(); rough != "" {
-			files["rough"] = rough
-		}
+		lights = splitList(light)
 	}
 	for i, name := range lights {
 		if strings.HasSuffix(strings.ToLower(name), ".hdr") {
 			files[fmt.Sprint("light ", i+1)] = name
 		}
 	}
+	rough, _ := settings["rough"].(string)
+	if path := roughFile(plan, rough); path != "" {
+		files["rough"] = path
+	}
 	return files
 }
 
 // roughFile returns the scan of the rough that tune looks for stones in, "" for none.
-func (s *sweeping) roughFile() string {
-	k := &s.line.Tune
-	if k.Rough == "" {
+func roughFile(plan, rough string) string {
+	if rough == "" {
 		return ""
 	}
-	var plan *facets.Plan
-	if k.Plan != "" {
-		plan, _ = facets.OpenPlan(k.Plan) // faults are the job's to tell
+	var p *facets.Plan
+	if plan != "" {
+		p, _ = facets.OpenPlan(plan) // faults are the job's to tell
 	}
-	ref, folder, err := k.roughRef(plan)
-	if err != nil || ref.File == "" {
+	ref, folder, err := (&tuneLimits{Rough: rough}).roughRef(p)
+	switch {
+	case err != nil || ref.File == "":
 		return ""
-	}
-	if filepath.IsAbs(ref.File) {
+	case filepath.IsAbs(ref.File):
 		return ref.File
 	}
 	return filepath.Join(folder, ref.File)
@@ -471,7 +486,8 @@ func (s *sweeping) job(ctx context.Context, place int) (out sweep.Outcome, err e
 	if ctx.Err() != nil {
 		return out, context.Cause(ctx)
 	}
-	for role, path := range s.inputs() {
+	all, _ := settingsOf(k)
+	for role, path := range s.inputs(s.jobs[place].File, all) {
 		if now, err := hashFile(path); err == nil && now != s.fileDigest(path) || err != nil && s.fileDigest(path) != "none" {
 			return out, inputFault(fmt.Errorf("%s (the %s of job %d) changed while the sweep ran; leave it alone and run the same command again",
 				path, role, place+1))
@@ -574,22 +590,16 @@ func (s *sweeping) deliver(results *sweep.Results) error {
 
 // told tells what was written, and what failed.
 func (s *sweeping) told(results *sweep.Results, paths ...string) error {
-	rows := results.Rows()
-	failed := 0
-	for i := range rows {
-		if rows[i].Error != "" {
-			failed++
-		}
-	}
+	failed := len(results.Failed())
 	var err error
 	if s.json {
 		err = printJSON(s.env.Stdout, struct {
 			Jobs    int      `json:"jobs"`
 			Failed  int      `json:"failed"`
 			Written []string `json:"written"`
-		}{len(rows), failed, paths})
+		}{results.Len(), failed, paths})
 	} else {
-		_, err = fmt.Fprintf(s.env.Stdout, "%d jobs, %d failed. Written: %s\n", len(rows), failed, strings.Join(paths, " "))
+		_, err = fmt.Fprintf(s.env.Stdout, "%d jobs, %d failed. Written: %s\n", results.Len(), failed, strings.Join(paths, " "))
 	}
 	if err != nil {
 		return ownFault(fmt.Errorf("the results cannot be written: %w", err))
@@ -600,23 +610,18 @@ func (s *sweeping) told(results *sweep.Results, paths ...string) error {
 // failures tells which jobs failed.
 func failures(results *sweep.Results) error {
 	const most = 10 // that are named
-	var words []string
-	count, rows := 0, results.Rows()
-	for i := range rows {
-		r := &rows[i]
-		if r.Error == "" {
-			continue
-		}
-		if count++; count <= most {
-			first, _, _ := strings.Cut(r.Error, "\n")
-			words = append(words, fmt.Sprintf("job %d: %s", r.Job, first))
-		}
-	}
-	if count == 0 {
+	failed := results.Failed()
+	if len(failed) == 0 {
 		return nil
 	}
+	var words []string
+	for _, r := range failed[:min(most, len(failed))] {
+		first, _, _ := strings.Cut(r.Error, "\n")
+		words = append(words, fmt.Sprintf("job %d: %s", r.Job, first))
+	}
+	count := len(failed)
 	if count > most {
 		words = append(words, fmt.Sprintf("and %d more", count-most))
 	}
-	return inputFault(fmt.Errorf("%d of %d jobs failed; their rows say why\n%s", count, len(rows), strings.Join(words, "\n")))
+	return inputFault(fmt.Errorf("%d of %d jobs failed; their rows say why\n%s", count, results.Len(), strings.Join(words, "\n")))
 }

@@ -17,7 +17,13 @@ import (
 // or for what each search found. Other answers of tune have no line each; they are
 // printed as CSV.
 func (s *sweeping) print(w io.Writer, results *sweep.Results) error {
-	rows := results.Rows()
+	rows := make([]sweep.Row, results.Len()) // a sweep that is read on a screen is short
+	for i := range rows {
+		var err error
+		if rows[i], err = results.Row(i); err != nil {
+			return err
+		}
+	}
 	if s.verb == "tune" && slices.ContainsFunc(rows, otherThanSearch) {
 		return results.WriteTable(w)
 	}

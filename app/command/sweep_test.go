@@ -309,6 +309,34 @@ func TestSweepKilled(t *testing.T) {
 	t.Logf("%d kills, %d runs to the end", done, outlived+1)
 }
 
+// Two machines that do the same part at once, as when an engine gives one up too early,
+// do not disturb each other.
+func TestSweepTwiceAtOnce(t *testing.T) {
+	sweepFolder(t)
+	args := func(folder string) []string { return listed("--shard", "1/2", "--out", folder) }
+	runCommand(args("alone")...)
+	var both []*exec.Cmd
+	for range 2 {
+		p := program(t, args("parts")...)
+		if err := p.Start(); err != nil {
+			t.Fatal(err)
+		}
+		both = append(both, p)
+	}
+	for _, p := range both {
+		if err := p.Wait(); err != nil && p.ProcessState.ExitCode() != InputFault { // jobs of the list fail
+			t.Error(err)
+		}
+	}
+	const name = "shard-1-of-2.jsonl"
+	if rowsDone("parts") > 0 {
+		t.Errorf("%d rows are left behind", rowsDone("parts"))
+	}
+	if mustRead(t, filepath.Join("parts", name)) != mustRead(t, filepath.Join("alone", name)) {
+		t.Error("two at once make other bytes than one")
+	}
+}
+
 // A sweep that is stopped says so and keeps what it did; what is printed is all or none.
 func TestSweepStopped(t *testing.T) {
 	sweepFolder(t)

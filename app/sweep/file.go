@@ -35,7 +35,8 @@ type header struct {
 	Digest string `json:"rows_sha256,omitempty"` // empty while rows are still being added
 }
 
-// line is a row as it stands in the file and what it says.
+// line is a row as it stands in the file, and what it says but for the result, which
+// would take the memory twice.
 type line struct {
 	Row
 	text []byte // with its end of line
@@ -43,6 +44,7 @@ type line struct {
 
 func newLine(r Row) (line, error) {
 	text, err := encode(r)
+	r.Result = nil
 	return line{r, text}, err
 }
 
@@ -101,6 +103,7 @@ func read(r io.Reader) (header, []line, error) {
 		if json.Unmarshal(text, &l.Row) != nil || l.Job < 1 || l.Job > head.Jobs || (l.Error == "") == (l.Result == nil) {
 			break
 		}
+		l.Result = nil
 		rows = append(rows, l)
 	}
 	if head.Digest != "" && (len(rows) != head.Rows || digestOf(rows) != head.Digest) {

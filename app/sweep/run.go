@@ -2,12 +2,15 @@ package sweep
 
 import (
 	"context"
+	"encoding/json"
 	"errors"
 	"fmt"
 	"io"
 	"io/fs"
 	"os"
 	"path/filepath"
+
+	"pavilight/app/disk"
 )
 
 // Outcome is what became of a job: a result, or an error in words.
@@ -78,7 +81,7 @@ func (r *Run) Go(ctx context.Context) (*Results, error) {
 		if err != nil {
 			return nil, err
 		}
-		if err := notes.add(l); err != nil {
+		if err := notes.note(l.text); err != nil {
 			return nil, err
 		}
 		rows = append(rows, l)
@@ -169,25 +172,28 @@ func (r *Run) notebook(head header) (*notebook, error) {
 	folder, base := filepath.Split(r.Path)
 	f, err := os.CreateTemp(filepath.Clean(folder), "."+base+".*.part")
 	if err != nil {
-		return nil, err
+		return nil, disk.InWords(r.Path, err)
 	}
+	n := &notebook{f}
 	first, err := encode(head)
 	if err == nil {
-		_, err = f.Write(first)
+		err = n.note(first)
 	}
 	if err != nil {
 		f.Close()
 		return nil, err
 	}
-	return &notebook{f}, nil
+	return n, nil
 }
 
-func (n *notebook) add(l line) error {
+func (n *notebook) note(text []byte) error {
 	if n.f == nil {
 		return nil
 	}
-	_, err := n.f.Write(l.text)
-	return err
+	if _, err := n.f.Write(text); err != nil {
+		return disk.InWords(n.f.Name(), err)
+	}
+	return nil
 }
 
 func (n *notebook) close() {
@@ -202,13 +208,23 @@ type Results struct {
 	lines    []line
 }
 
-// Rows returns the rows.
-func (r *Results) Rows() []Row {
-	rows := make([]Row, len(r.lines))
-	for i := range rows {
-		rows[i] = r.lines[i].Row
+// Len returns how many rows there are.
+func (r *Results) Len() int { return len(r.lines) }
+
+// Row returns the row at a place, from 0.
+func (r *Results) Row(i int) (row Row, err error) {
+	err = json.Unmarshal(r.lines[i].text, &row)
+	return row, err
+}
+
+// Failed returns the rows that have an error.
+func (r *Results) Failed() (failed []Row) {
+	for i := range r.lines {
+		if r.lines[i].Error != "" {
+			failed = append(failed, r.lines[i].Row)
+		}
 	}
-	return rows
+	return failed
 }
 
 // Save writes the results of a whole sweep as JSON lines into the file at path, unless

@@ -335,7 +335,7 @@ func TestMerge(t *testing.T) {
 			results, _, err := Merge(folder, row.mixed)
 			var told *MergeError
 			switch {
-			case row.words == "" && (err != nil || len(results.Rows()) != 11):
+			case row.words == "" && (err != nil || results.Len() != 11):
 				t.Errorf("%v", err)
 			case row.words != "" && (!errors.As(err, &told) || !strings.Contains(err.Error(), row.words)):
 				t.Errorf("%v, want words with %q", err, row.words)

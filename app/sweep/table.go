@@ -35,70 +35,88 @@ func makesLines(name string) bool { return name == "media" || name == "points" |
 // with points between the names of things that lie in each other; lists of numbers are
 // left out. A text that a spreadsheet would take for a formula gets an apostrophe.
 func (r *Results) WriteTable(w io.Writer) error {
-	var lines []cells
-	var settings, columns []string
-	last := []string{"notes", "error", "key"}
-	for i := range r.lines {
-		row := &r.lines[i].Row
-		var values map[string]json.RawMessage
-		if err := json.Unmarshal(row.Settings, &values); err != nil {
-			return fmt.Errorf("job %d: %w", row.Job, err)
-		}
-		for name := range values {
-			if !slices.Contains(settings, name) {
-				settings = append(settings, name)
-			}
-		}
-		of, err := tableLines(row, values)
-		if err != nil {
-			return fmt.Errorf("job %d: %w", row.Job, err)
-		}
-		lines = append(lines, of...)
+	head, err := r.columns()
+	if err != nil {
+		return err
 	}
-	slices.Sort(settings)
-	known := map[string]bool{}
-	for _, l := range lines {
-		for _, name := range l.names {
-			if !known[name] {
-				known[name] = true
-				columns = append(columns, name)
-			}
-		}
-	}
-	head := []string{"job", "file"}
-	for _, s := range settings {
-		head = append(head, "settings."+s)
-	}
-	for _, c := range columns {
-		if !slices.Contains(head, c) && !slices.Contains(last, c) {
-			head = append(head, c)
-		}
-	}
-	head = append(head, last...)
 	out := csv.NewWriter(w)
 	if err := out.Write(head); err != nil {
 		return err
 	}
 	record := make([]string, len(head))
-	for _, l := range lines {
+	err = r.eachLine(func(l cells) error {
 		for i, name := range head {
 			record[i] = l.values[name]
 		}
-		if err := out.Write(record); err != nil {
-			return err
-		}
+		return out.Write(record)
+	})
+	if err != nil {
+		return err
 	}
 	out.Flush()
 	return out.Error()
 }
 
+// columns returns the heads of the columns: the job, its settings, what results have in
+// the order in which it is met, and what few have at the end.
+func (r *Results) columns() ([]string, error) {
+	var settings, found []string
+	last := []string{"notes", "error", "key"}
+	known := map[string]bool{"job": true, "file": true, "notes": true, "error": true, "key": true}
+	err := r.eachLine(func(l cells) error {
+		for name := range l.values {
+			if strings.HasPrefix(name, settingPrefix) && !known[name] {
+				known[name] = true
+				settings = append(settings, name)
+			}
+		}
+		for _, name := range l.names {
+			if !known[name] {
+				known[name] = true
+				found = append(found, name)
+			}
+		}
+		return nil
+	})
+	slices.Sort(settings)
+	return slices.Concat([]string{"job", "file"}, settings, found, last), err
+}
+
+// settingPrefix begins the name of a setting's column.
+const settingPrefix = "settings."
+
+// eachLine hands on the lines of the table one after the other: all of them at once would
+// take many times the memory of the rows.
+func (r *Results) eachLine(do func(cells) error) error {
+	for i := range r.lines {
+		row, err := r.Row(i)
+		if err != nil {
+			return err
+		}
+		lines, err := tableLines(&row)
+		if err != nil {
+			return fmt.Errorf("job %d: %w", row.Job, err)
+		}
+		for _, l := range lines {
+			if err := do(l); err != nil {
+				return err
+			}
+		}
+	}
+	return nil
+}
+
 // tableLines returns the lines of the table for a row.
-func tableLines(row *Row, settings map[string]json.RawMessage) ([]cells, error) {
+func tableLines(row *Row) ([]cells, error) {
+	var settings map[string]json.RawMessage
+	if err := json.Unmarshal(row.Settings, &settings); err != nil {
+		return nil, err
+	}
 	about := cells{values: map[string]string{}}
 	about.put("job", fmt.Sprint(row.Job))
 	about.put("file", cell.Text(row.File))
 	for name, value := range settings {
-		if _, err := flatten(&about, "settings."+name, value); err != nil {
+		if _, err := flatten(&about, settingPrefix+name, value); err != nil {
 			return nil, err
 		}
 	}
