@@ -6,8 +6,9 @@ import "slices"
 type Absorption struct {
 	Name          string
 	Wavelengths   []Wavelength // ascending knots
-	Ordinary      []float64    // per mm at the knots, ≥ 0
-	Extraordinary []float64    // per mm at the knots; empty means as the ordinary ray
+	Ordinary      []float64    // per mm at the knots, ≥ 0; alpha's of a biaxial material
+	Beta          []float64    // per mm at the knots, of a biaxial material; empty means as Ordinary
+	Extraordinary []float64    // per mm at the knots; empty means as Ordinary; gamma's of a biaxial material
 	Source        Source
 }
 
@@ -24,6 +25,17 @@ func (a *Absorption) Coefficient(w Wavelength) (ordinary, extraordinary float64)
 		return ordinary, ordinary
 	}
 	return ordinary, between(a.Extraordinary, i, t)
+}
+
+// Coefficients returns the absorption per mm of path for light that vibrates along each
+// principal axis, in the order of Principal; otherwise it is like Coefficient.
+func (a *Absorption) Coefficients(w Wavelength) [3]float64 {
+	ordinary, extraordinary := a.Coefficient(w)
+	if a == nil || len(a.Beta) == 0 {
+		return [3]float64{ordinary, ordinary, extraordinary}
+	}
+	i, t := a.locate(w)
+	return [3]float64{ordinary, between(a.Beta, i, t), extraordinary}
 }
 
 // locate returns the knot at or below w and how far on, 0 to 1, w lies to the next.

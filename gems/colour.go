@@ -36,26 +36,54 @@ func (c Colour) String() string {
 // Source of the spectrum's form: W. Jakob and J. Hanika, Comput. Graph. Forum 38(2),
 // 147 (2019).
 func ColouredBody(ordinary, extraordinary Colour, thickness float64) (*Absorption, error) {
+	name := fmt.Sprintf("%v along the ordinary and %v along the extraordinary ray", ordinary, extraordinary)
+	if ordinary == extraordinary {
+		name = ordinary.String()
+	}
+	curves, a, err := smoothCurves(name, thickness, ordinary, extraordinary)
+	if err != nil {
+		return nil, err
+	}
+	a.Ordinary, a.Extraordinary = curves[0], curves[1]
+	return a, nil
+}
+
+// ThreeColouredBody is ColouredBody for a biaxial material: daylight takes the given
+// colours where it vibrates along alpha, beta and gamma.
+func ThreeColouredBody(alpha, beta, gamma Colour, thickness float64) (*Absorption, error) {
+	name := fmt.Sprintf("%v along alpha, %v along beta and %v along gamma", alpha, beta, gamma)
+	curves, a, err := smoothCurves(name, thickness, alpha, beta, gamma)
+	if err != nil {
+		return nil, err
+	}
+	a.Ordinary, a.Beta, a.Extraordinary = curves[0], curves[1], curves[2]
+	return a, nil
+}
+
+// smoothCurves returns smooth curves of absorption per mm that make colours through a
+// thickness, at the wavelengths of the absorption that they are for.
+func smoothCurves(name string, thickness float64, colours ...Colour) (curves [][]float64, a *Absorption, err error) {
 	if !(thickness > 0) || math.IsInf(thickness, 0) {
-		return nil, fmt.Errorf("thickness %g mm of a colour: not possible; use the millimetres of material "+
+		return nil, nil, fmt.Errorf("thickness %g mm of a colour: not possible; use the millimetres of material "+
 			"through which it was seen", thickness)
 	}
-	a := &Absorption{
-		Name: fmt.Sprintf("%v along the ordinary and %v along the extraordinary ray through %g mm",
-			ordinary, extraordinary, thickness),
+	a = &Absorption{
+		Name:   fmt.Sprintf("%s through %g mm", name, thickness),
 		Source: "smooth spectrum through colours that a user gave (Jakob and Hanika 2019); computed",
 	}
-	if ordinary == extraordinary {
-		a.Name = fmt.Sprintf("%v through %g mm", ordinary, thickness)
-	}
-	sight := newSight()
-	o, e := sight.smoothTransmittance(ordinary), sight.smoothTransmittance(extraordinary)
 	for w := visibleLo; w <= visibleHi; w += sightStep {
 		a.Wavelengths = append(a.Wavelengths, w)
-		a.Ordinary = append(a.Ordinary, -math.Log(o.at(w))/thickness)
-		a.Extraordinary = append(a.Extraordinary, -math.Log(e.at(w))/thickness)
 	}
-	return a, nil
+	sight := newSight()
+	for _, c := range colours {
+		transmittance := sight.smoothTransmittance(c)
+		var curve []float64
+		for _, w := range a.Wavelengths {
+			curve = append(curve, -math.Log(transmittance.at(w))/thickness)
+		}
+		curves = append(curves, curve)
+	}
+	return curves, a, nil
 }
 
 // sigmoid is the smooth spectrum S(c0 t² + c1 t + c2) with S(x) = ½ + x/(2√(1+x²)),

@@ -92,6 +92,32 @@ func TestTwoColouredBody(t *testing.T) {
 	}
 }
 
+func TestThreeColouredBody(t *testing.T) {
+	straw, blue, violet := Colour{0.8, 0.75, 0.5}, Colour{0.2, 0.3, 0.8}, Colour{0.5, 0.2, 0.6}
+	three, err := ThreeColouredBody(straw, blue, violet, 4)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for i, c := range []Colour{straw, blue, violet} {
+		one, err := ColouredBody(c, c, 4)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for w := visibleLo; w <= visibleHi; w += 25 {
+			if got, _ := one.Coefficient(w); three.Coefficients(w)[i] != got {
+				t.Errorf("principal axis %d at %v: %v, want %v as of the colour alone", i, w, three.Coefficients(w)[i], got)
+			}
+		}
+	}
+	a := &Absorption{Wavelengths: []Wavelength{400, 500}, Ordinary: []float64{1, 3}, Extraordinary: []float64{0, 2}}
+	if got := a.Coefficients(450); got != [3]float64{2, 2, 1} {
+		t.Errorf("of a uniaxial material %v", got)
+	}
+	if _, err := ThreeColouredBody(straw, blue, violet, 0); err == nil {
+		t.Error("no thickness is no fault")
+	}
+}
+
 func TestColourless(t *testing.T) {
 	white := Colour{1, 1, 1}
 	a, err := ColouredBody(white, white, 5)

@@ -38,7 +38,8 @@ const (
 // (constant, cauchy, sellmeier, resonance, pole, laurent or points), coefficients in the
 // order that Kind says, range_nm, and as they apply temperature and vacuum = true. A
 // [material.colour] gives the body colour: ordinary and extraordinary as "#rrggbb" seen
-// through thickness_mm, or wavelength_nm with ordinary_per_mm and extraordinary_per_mm.
+// through thickness_mm, or wavelength_nm with ordinary_per_mm and extraordinary_per_mm;
+// with three indices alpha, beta and gamma, alpha_per_mm and so on, or ordinary for all.
 // Other keys: names, cleavage, toughness, notes.
 func ReadMaterials(r io.Reader, file string) ([]*Material, error) {
 	data, err := io.ReadAll(io.LimitReader(r, largestFile+1))
@@ -148,7 +149,7 @@ func (t *table) material() *Material {
 		m.CautionSource = from
 	}
 	m.Notes, _ = t.text("notes")
-	m.Absorption = t.colour(from)
+	m.Absorption = t.colour(from, len(m.Rays) == 3)
 	t.close()
 	return m
 }
@@ -309,62 +310,86 @@ func (d *Dispersion) misshapen() string {
 	return ""
 }
 
-// colour reads [material.colour]; nil where there is none.
-func (t *table) colour(from Source) *Absorption {
+// colour reads [material.colour]; nil where there is none. three says that the material has
+// three indices.
+func (t *table) colour(from Source, three bool) *Absorption {
 	c := t.table("colour")
 	if c == nil {
 		return nil
 	}
 	defer c.close()
-	if !c.has("wavelength_nm") {
-		return c.seenColour(from)
+	rays := []string{"ordinary", "extraordinary"}
+	switch {
+	case c.has("alpha") || c.has("alpha_per_mm"):
+		rays = []string{"alpha", "beta", "gamma"}
+		if !three {
+			c.fault("alpha", "", "is for a material of three indices", "write ordinary and extraordinary")
+		}
+	case three && (c.has("extraordinary") || c.has("extraordinary_per_mm")):
+		c.fault("extraordinary", "", "is not a ray of a material of three indices",
+			"write alpha, beta and gamma, or ordinary alone for all three")
 	}
-	a := &Absorption{Name: "curve of the user's own", Source: from}
+	var a *Absorption
+	var curves [][]float64
+	if c.has("wavelength_nm") {
+		a, curves = c.curves(rays)
+	} else {
+		a, curves = c.seenColours(rays)
+	}
+	if c.anyFault() {
+		return nil
+	}
+	a.Source = from
+	a.Ordinary, a.Extraordinary = curves[0], curves[len(curves)-1]
+	if len(curves) == 3 {
+		a.Beta = curves[1]
+	}
+	return a
+}
+
+// curves reads curves of absorption for rays; the second of two may be left out.
+func (c *table) curves(rays []string) (a *Absorption, curves [][]float64) {
+	a = &Absorption{Name: "curve of the user's own"}
 	for _, w := range c.numbers("wavelength_nm", 100, 100000, "wavelengths in nm") {
 		a.Wavelengths = append(a.Wavelengths, Wavelength(w))
 	}
 	const most = 1e4 // per mm: beyond any use of a transparent stone
-	a.Ordinary = c.numbers("ordinary_per_mm", 0, most, "absorption per mm, 0 or more")
-	a.Extraordinary = c.numbers("extraordinary_per_mm", 0, most, "absorption per mm, 0 or more")
+	for _, ray := range rays {
+		curves = append(curves, c.numbers(ray+"_per_mm", 0, most, "absorption per mm, 0 or more"))
+	}
 	if c.anyFault() {
-		return a
+		return a, curves
 	}
 	distinct := slices.Compact(slices.Clone(a.Wavelengths))
 	if len(distinct) < 2 || len(distinct) < len(a.Wavelengths) || !slices.IsSorted(a.Wavelengths) {
 		c.fault("wavelength_nm", "", "is not a list of two or more wavelengths in ascending order", "sort it")
 	}
-	uneven := func(field string) {
-		c.fault(field, "", "has not one number for each wavelength", "give both lists the same length")
+	for i, ray := range rays {
+		if n := len(curves[i]); n != len(a.Wavelengths) && (n > 0 || len(rays) == 3 || i == 0) {
+			c.fault(ray+"_per_mm", "", "has not one number for each wavelength", "give all lists the same length")
+		}
 	}
-	if len(a.Ordinary) != len(a.Wavelengths) {
-		uneven("ordinary_per_mm")
-	}
-	if n := len(a.Extraordinary); n > 0 && n != len(a.Wavelengths) {
-		uneven("extraordinary_per_mm")
-	}
-	return a
+	return a, curves
 }
 
-// seenColour reads a body colour that was seen through a thickness.
-func (c *table) seenColour(from Source) *Absorption {
-	read := func(field string) (Colour, bool) {
-		written, ok := c.text(field)
-		if !ok {
-			return Colour{}, false
+// seenColours reads colours of rays that were seen through a thickness; the second of two
+// may be left out.
+func (c *table) seenColours(rays []string) (a *Absorption, curves [][]float64) {
+	var colours []Colour
+	for i, ray := range rays {
+		written, ok := c.text(ray)
+		if !ok && i == 1 && len(rays) == 2 && !c.faulty(ray) {
+			colours = append(colours, colours[0])
+			continue
 		}
 		colour, err := ParseColour(written)
-		if err != nil {
-			c.fault(field, written, "is not a colour", "write it as #rrggbb, such as #2a7f5e")
+		switch {
+		case !ok && !c.faulty(ray):
+			c.missing(ray, fmt.Sprintf(`write the colour seen, such as %s = "#2a7f5e", or a curve with wavelength_nm`, ray))
+		case ok && err != nil:
+			c.fault(ray, written, "is not a colour", "write it as #rrggbb, such as #2a7f5e")
 		}
-		return colour, err == nil
-	}
-	ordinary, ok := read("ordinary")
-	if !ok && !c.faulty("ordinary") {
-		c.missing("ordinary", `write the colour seen, such as ordinary = "#2a7f5e", or a curve with wavelength_nm`)
-	}
-	extraordinary, two := read("extraordinary")
-	if !two {
-		extraordinary = ordinary
+		colours = append(colours, colour)
 	}
 	const least, most = 1e-3, 1e4
 	thickness, has := c.number("thickness_mm", least, most, "the millimetres through which the colour was seen")
@@ -372,14 +397,18 @@ func (c *table) seenColour(from Source) *Absorption {
 		c.missing("thickness_mm", "give the millimetres through which the colour was seen")
 	}
 	if c.anyFault() {
-		return nil
+		return nil, nil
 	}
-	a, err := ColouredBody(ordinary, extraordinary, thickness)
+	body, err := ColouredBody(colours[0], colours[1], thickness)
+	if len(rays) == 3 {
+		body, err = ThreeColouredBody(colours[0], colours[1], colours[2], thickness)
+	}
 	if err != nil {
 		c.fault("colour", "", err.Error(), "")
+		return nil, nil
 	}
-	if a != nil {
-		a.Source = from
+	if len(rays) == 3 {
+		return body, [][]float64{body.Ordinary, body.Beta, body.Extraordinary}
 	}
-	return a
+	return body, [][]float64{body.Ordinary, body.Extraordinary}
 }

@@ -55,6 +55,10 @@ func TestReadSampleFile(t *testing.T) {
 	if n, err := pale.Index(450); err != nil || math.Abs(n-(1.612+1.615+1.623)/3) > 1e-12 || pale.Character() != BiaxialPositive {
 		t.Errorf("pale stone: %g, %v, %v", n, err, pale.Character())
 	}
+	// Of yellow, light blue and deeper blue the first lets least blue light through, the last least red.
+	if blue, red := pale.Absorption.Coefficients(450), pale.Absorption.Coefficients(650); !(blue[0] > blue[1] && red[2] > red[1] && red[1] > red[0]) {
+		t.Errorf("pale stone: takes %v per mm of blue light, %v of red", blue, red)
+	}
 }
 
 func TestReadMaterialsWithCRLFAndMark(t *testing.T) {
@@ -120,6 +124,14 @@ func TestReadMaterialsFaults(t *testing.T) {
 			[]string{"are not in ascending order"}},
 		{"bad colour", head + "index = 1.5\n[material.colour]\nordinary = \"green\"\nthickness_mm = -2\n", []string{
 			`x.toml:7: material "a": ordinary "green": is not a colour`, `x.toml:8: material "a": thickness_mm "-2"`}},
+		{"three colours of one ray", head + "index = 1.5\n[material.colour]\nalpha = \"#111111\"\nbeta = \"#111111\"\ngamma = \"#111111\"\nthickness_mm = 2\n",
+			[]string{`alpha: is for a material of three indices`}},
+		{"a colour missing", head + "index = [1.5, 1.6, 1.7]\n[material.colour]\nalpha = \"#111111\"\ngamma = \"#111111\"\nthickness_mm = 2\n",
+			[]string{`beta: is missing`}},
+		{"two colours of three rays", head + "index = [1.5, 1.6, 1.7]\n[material.colour]\nordinary = \"#111111\"\nextraordinary = \"#222222\"\nthickness_mm = 2\n",
+			[]string{`extraordinary: is not a ray of a material of three indices`}},
+		{"a curve missing", head + "index = [1.5, 1.6, 1.7]\n[material.colour]\nwavelength_nm = [400, 700]\nalpha_per_mm = [0, 1]\ngamma_per_mm = [0, 1]\n",
+			[]string{`beta_per_mm: has not one number`}},
 		{"negative absorption", head + "index = 1.5\n[material.colour]\nwavelength_nm = [400, 700]\nordinary_per_mm = [0.1, -0.1]\n",
 			[]string{`ordinary_per_mm "-0.1"`}},
 		{"curves of two lengths", head + "index = 1.5\n[material.colour]\nwavelength_nm = [400, 700]\nordinary_per_mm = [0.1]\n",

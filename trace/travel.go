@@ -92,9 +92,10 @@ func (t *traveller) look(w gems.Wavelength, stone *gems.Material, at *lambda) {
 	}
 	if t.axes != nil {
 		p, _ := stone.Indices(w)
-		o, e := t.colour.Coefficient(w)
-		o, e = o*t.body.unit, e*t.body.unit
-		at.twin = twin{newCrystal(t.axes, p), [3]float64{o, o, e}}
+		at.twin = twin{newCrystal(t.axes, p), t.colour.Coefficients(w)}
+		for i := range at.twin.natural {
+			at.twin.natural[i] *= t.body.unit
+		}
 	} else {
 		at.absorb = meanAbsorption(t.colour, w) * t.body.unit
 	}
@@ -103,8 +104,8 @@ func (t *traveller) look(w gems.Wavelength, stone *gems.Material, at *lambda) {
 // meanAbsorption is the natural absorption per mm that light meets in the mean over all
 // directions, to first order; 0 for no colour.
 func meanAbsorption(colour *gems.Absorption, w gems.Wavelength) float64 {
-	o, e := colour.Coefficient(w)
-	return (2*o + e) / 3
+	a := colour.Coefficients(w)
+	return (a[0] + a[1] + a[2]) / 3
 }
 
 // journey is what one ray gathers.

@@ -35,7 +35,7 @@ func about(axis vec) *orientation {
 type doubleSlow struct {
 	slow
 	c      crystal
-	axis   mgl64.Vec3 // of the isotropic oracle
+	axes   [2]vec     // optic axes that the isotropic oracle has the waves' directions from
 	absorb [3]float64 // natural absorption per mm along the principal axes
 	deep   int        // bounces after which what is left counts as unresolved
 	equal  bool       // the isotropic oracle
@@ -103,7 +103,13 @@ func (o *doubleSlow) wave(from int, x mgl64.Vec3, w wave, power float64, depth i
 // part is the isotropic oracle: one index, but the fields along d are split into the same
 // two directions as a crystal's waves have, and the phase between those is forgotten.
 func (o *doubleSlow) part(from int, x, d mgl64.Vec3, es []field, depth int) {
-	a := d.Cross(o.axis).Normalize()
+	// Fresnel's construction, see biaxial.
+	one, two := d.Cross(o.axes[0].mgl()).Normalize(), d.Cross(o.axes[1].mgl()).Normalize()
+	a := one.Add(two)
+	if a.Len() < 1 {
+		a = one.Sub(two)
+	}
+	a = a.Normalize()
 	b := d.Cross(a)
 	for _, dir := range []mgl64.Vec3{a, b} {
 		sum := 0.0
@@ -134,8 +140,8 @@ func TestSmallBirefringence(t *testing.T) {
 		view := View{Tilt: facets.Angle(rng.Float64()) / 2, Turn: facets.Angle(rng.Float64() * 6)}
 		tr := prepare(t, s, view, false)
 		tr.faint = 0
-		axis := unit(rng)
-		for range 6 {
+		o := turned(rng)
+		for ray := range 8 {
 			facet, at, ok := tr.outline.enter(tr.outline.half*(2*rng.Float64()-1),
 				tr.outline.half*(2*rng.Float64()-1))
 			if !ok {
@@ -143,15 +149,19 @@ func TestSmallBirefringence(t *testing.T) {
 			}
 			rays++
 			x := tr.body.place(at)
+			// A uniaxial stone and a biaxial one in turn, its optic axes 66 degrees apart.
+			middle := 0.3 * float64(ray%2)
+			sin, cos := math.Sqrt(middle), math.Sqrt(1-middle)
 			oracle := doubleSlow{deep: 8, equal: true,
 				slow: slow{planes: s.Facets, n: 1.7, m: 1.333, eye: tr.outline.eye.mgl(), headCos: 2}}
-			oracle.axis = axis.mgl()
+			oracle.axes = [2]vec{o[2].scale(cos).plus(sin, o[0]), o[2].scale(cos).plus(-sin, o[0])}
 			want := oracle.enter(facet, x)
 			near(t, "sum", want.Sum(), 1, 1e-9, "light is neither made nor lost")
 			for _, birefringence := range []float64{1e-5, 1e-7} {
-				o := oracle
-				o.equal, o.c = false, newUniaxial(axis, 1.7, 1.7+birefringence)
-				got := o.enter(facet, x)
+				double := oracle
+				double.equal = false
+				double.c = newCrystal(&o, gems.Principal{1.7, 1.7 + middle*birefringence, 1.7 + birefringence})
+				got := double.enter(facet, x)
 				for q := range quantities {
 					differ[birefringence] += math.Abs(q.Of(got) - q.Of(want))
 				}
@@ -176,24 +186,31 @@ func TestSmallBirefringence(t *testing.T) {
 // far apart and each wave has its colour.
 func TestChosenBranches(t *testing.T) {
 	rng := rand.New(rand.NewPCG(9, 2))
-	stone, air := ofIndices(t, "stone", 1.8, 1.55), plain(t, "air", 1)
+	one, two := ofIndices(t, "stone", 1.8, 1.55), ofIndices(t, "stone", 1.55, 1.62, 1.8)
+	air := plain(t, "air", 1)
 	const throws = 1500
 	// One ray a stone, five entries, two-sided: a level of 0.001 altogether.
 	const limit = 4.3
+	biaxial := false // every other stone
 	for name, s := range each(stones(t)) {
 		tr := general(t, s, View{Tilt: 0.2, Turn: facets.Angle(rng.Float64() * 6)}, air, false)
 		tr.faint, tr.headCos = 1e-4, math.Cos(10*math.Pi/180)
-		axis := unit(rng)
-		tr.axes = about(axis)
+		axes := turned(rng)
+		tr.axes = &axes
+		stone, natural := one, [3]float64{0.2, 0.2, 0.05}
+		if biaxial {
+			stone, natural = two, [3]float64{0.2, 0.02, 0.1}
+		}
+		biaxial = !biaxial
 		at := at550(tr, stone)
 		unit := tr.body.unit
-		at.twin.natural = [3]float64{0.2, 0.2, 0.05}
+		at.twin.natural = natural
 		facet, x, ok := tr.outline.enter(tr.outline.half*0.31, tr.outline.half*0.17)
 		if !ok {
 			continue
 		}
 		o := doubleSlow{slow: slow{planes: s.Facets, m: 1, eye: tr.outline.eye.mgl(), headCos: tr.headCos},
-			c: at.twin.crystal, absorb: [3]float64{0.2 / unit, 0.2 / unit, 0.05 / unit}, deep: 13}
+			c: at.twin.crystal, absorb: [3]float64{natural[0] / unit, natural[1] / unit, natural[2] / unit}, deep: 13}
 		want := o.enter(facet, tr.body.place(x))
 		near(t, name+": sum of both", want.Sum(), 1, 1e-9, "light is neither made nor lost")
 		var mean, spread Ledger
@@ -227,15 +244,21 @@ func (q Quantity) in(l *Ledger) *float64 {
 // TestDoubleScenes lets doubly refracting stones meet all there is around them.
 func TestDoubleScenes(t *testing.T) {
 	rng := rand.New(rand.NewPCG(9, 4))
-	stone := ofIndices(t, "stone", 1.925, 1.984)
+	zircon, sphene := ofIndices(t, "zircon", 1.925, 1.984), ofIndices(t, "sphene", 1.9, 1.907, 2.034)
 	air, water := plain(t, "air", 1), plain(t, "water", 1.333)
+	biaxial := false
 	for name, s := range each(stones(t)) {
+		stone := zircon
+		if biaxial {
+			stone = sphene
+		}
+		biaxial = !biaxial
 		tier := ""
 		for _, f := range s.Facets {
 			tier = f.Tier
 		}
-		scene := Scene{Stone: s, Material: stone, Axis: &mgl64.Vec3{0.3, 0.2, 0.5}, Ground: &Ground{0.5},
-			Setting: &Setting{0.4, 0.5}}
+		scene := Scene{Stone: s, Material: stone, Axis: &mgl64.Vec3{0.3, 0.2, 0.5}, Plane: &mgl64.Vec3{0.1, 1, 0},
+			Ground: &Ground{0.5}, Setting: &Setting{0.4, 0.5}}
 		scene.Surroundings = []Surrounding{{Medium: air}, {Medium: water, Dish: true}}
 		if tier != "" {
 			scene.Surroundings = append(scene.Surroundings,
@@ -264,9 +287,13 @@ func TestDoubleScenes(t *testing.T) {
 		}
 	}
 	// Seen along the axis, in the exact middle of everything.
-	scene := Scene{Stone: stones(t)["round.toml"], Material: stone, Axis: &mgl64.Vec3{0, 0, 2},
-		Surroundings: Around(air, plain(t, "dense", 2.4))}
-	for _, c := range mustRun(t, scene, Settings{Wavelength: 550, Pixels: 6, Samples: 4, Below: 1}).Columns {
+	var columns []Column
+	for _, stone := range []*gems.Material{zircon, sphene} {
+		scene := Scene{Stone: stones(t)["round.toml"], Material: stone, Axis: &mgl64.Vec3{0, 0, 2}, Plane: &mgl64.Vec3{0, 3, 1},
+			Surroundings: Around(air, plain(t, "dense", 2.4))}
+		columns = append(columns, mustRun(t, scene, Settings{Wavelength: 550, Pixels: 6, Samples: 4, Below: 1}).Columns...)
+	}
+	for _, c := range columns {
 		near(t, "uniform surround", c.Lit.Sum+c.Ledger.Unresolved, 1, 1e-9,
 			"a lossless stone in a uniform surround shows the surround")
 		near(t, "unresolved", c.Ledger.Unresolved, 0, 1e-6, "a brilliant lets its light go")
@@ -297,6 +324,29 @@ func TestDichroism(t *testing.T) {
 		(plate(1.64, ordinary)+plate(1.62, extraordinary))/2, 1e-4, source)
 	if dark, light := through(mgl64.Vec3{0, 0, 1}), through(mgl64.Vec3{1, 0, 0}); dark > light/5 {
 		t.Errorf("a tourmaline dark down its axis must come out dark: %v along, %v across", dark, light)
+	}
+}
+
+// TestTrichroism looks along each principal axis of a plate with a colour for each.
+func TestTrichroism(t *testing.T) {
+	const source = "Beer-Lambert law for each wave in the geometric series of a plate"
+	s := solid(t, box(200, 200, 0.5)) // 1 mm thick
+	index, natural := [3]float64{1.62, 1.64, 1.70}, [3]float64{1.5, 0.4, 0.1}
+	m := ofIndices(t, "stone", index[:]...)
+	m.Absorption = &gems.Absorption{Wavelengths: []gems.Wavelength{400}, Ordinary: natural[:1], Beta: natural[1:2], Extraordinary: natural[2:]}
+	plate := func(i int) float64 {
+		r, left := math.Pow((index[i]-1)/(index[i]+1), 2), math.Exp(-natural[i])
+		return (1 - r) * (1 - r) * left / (1 - r*r*left*left)
+	}
+	// The acute bisectrix is gamma's direction, the other in the plane of the axes alpha's.
+	for along, row := range [3]struct{ axis, plane mgl64.Vec3 }{
+		{mgl64.Vec3{1, 0, 0}, mgl64.Vec3{0, 0, 1}}, {mgl64.Vec3{1, 0, 0}, mgl64.Vec3{0, 1, 0}}, {mgl64.Vec3{0, 0, 1}, mgl64.Vec3{0, 1, 0}},
+	} {
+		r := mustRun(t, Scene{Stone: s, Material: m, Axis: &row.axis, Plane: &row.plane, Surroundings: Around(plain(t, "air", 1))},
+			Settings{Wavelength: 589.3, Pixels: 2, Samples: 1000})
+		// The end-game throws for what is fainter than 1e-4.
+		near(t, "along "+[...]string{"alpha", "beta", "gamma"}[along], r.Columns[0].Ledger.Leaked,
+			(plate((along+1)%3)+plate((along+2)%3))/2, 1e-4, source)
 	}
 }
 
@@ -413,12 +463,61 @@ func TestAxisFaults(t *testing.T) {
 		{"endless", mgl64.Vec3{0, math.Inf(1), 1}, scene.Material, nil, "finite"},
 		{"film", mgl64.Vec3{0, 0, 1}, scene.Material, []Coating{{Film: Film{Index: 1.4}}}, "film"},
 		{"biaxial", mgl64.Vec3{0, 0, 1}, topaz, nil, "biaxial"},
+		{"biaxial, no length", mgl64.Vec3{}, topaz, nil, "length zero"},
 	} {
 		s := scene
 		s.Axis, s.Material, s.Coatings = &row.axis, row.stone, row.film
 		if _, err := Run(context.Background(), s, Settings{Wavelength: 550}, nil); err == nil ||
 			!strings.Contains(err.Error(), row.want) {
 			t.Errorf("%s: error %v must say %q", row.name, err, row.want)
+		}
+	}
+}
+
+// TestPlaneFaults has the acute bisectrix right and the plane of the optic axes wrong.
+func TestPlaneFaults(t *testing.T) {
+	scene := lump(t)
+	scene.Material, scene.Axis = ofIndices(t, "topaz", 1.619, 1.621, 1.627), &mgl64.Vec3{0, 0, 2}
+	for want, plane := range map[string]*mgl64.Vec3{
+		"two optic axes": nil,
+		"length zero":    {},
+		"finite":         {math.Inf(-1), 0, 0},
+		"along":          {0, 0, -1},
+	} {
+		scene.Plane = plane
+		if _, err := Run(context.Background(), scene, Settings{Wavelength: 550}, nil); err == nil ||
+			!strings.Contains(err.Error(), want) {
+			t.Errorf("plane %v: error %v must say %q", plane, err, want)
+		}
+	}
+}
+
+// TestOrientation lays the principal axes by the sign of the material.
+func TestOrientation(t *testing.T) {
+	scene := lump(t)
+	scene.Axis, scene.Plane = &mgl64.Vec3{0, 0, 2}, &mgl64.Vec3{0, 3, 1}
+	x, y, z := vec{-1, 0, 0}, vec{0, 1, 0}, vec{0, 0, 1} // z x y is -x
+	for _, row := range []struct {
+		name    string
+		indices []float64
+		want    orientation // alpha, beta, gamma
+	}{
+		{"positive: gamma halves the acute angle", topaz[:], orientation{y, x, z}},
+		{"negative: alpha does", aragonite[:], orientation{z, x, y}},
+	} {
+		scene.Material = ofIndices(t, row.name, row.indices...)
+		got := scene.orientation()
+		for i := range got {
+			if got[i].plus(-1, row.want[i]).length() > 1e-15 {
+				t.Errorf("%s: %v, want %v (definition of the acute bisectrix)", row.name, got, row.want)
+			}
+		}
+		c := newBiaxial(got, gems.Principal(row.indices))
+		if across := c.one.dot(vec{1, 0, 0}); math.Abs(across) > 1e-15 {
+			t.Errorf("%s: optic axis %v out of its plane", row.name, c.one)
+		}
+		if lean := math.Abs(c.one.z); lean < math.Sqrt2/2 {
+			t.Errorf("%s: optic axis %v more than 45 degrees from the acute bisectrix", row.name, c.one)
 		}
 	}
 }
@@ -435,6 +534,14 @@ func TestLimits(t *testing.T) {
 		"asin 1/n, indices of handbooks")
 	near(t, "zircon in air, higher index", limits[1].Critical.Degrees(), 30.27, 5e-3,
 		"asin 1/n, indices of handbooks")
+	scene.Material, scene.Plane = ofIndices(t, "topaz", topaz[:]...), &mgl64.Vec3{1, 0, 0}
+	limits = untraced(t, scene, Settings{Wavelength: 589.3}).result().Columns[0].Limits
+	if len(limits) != 3 {
+		t.Fatalf("%d limits, want 3", len(limits))
+	}
+	for i, want := range []float64{38.1458, 38.0903, 37.9249} {
+		near(t, "topaz in air, one of three indices", limits[i].Critical.Degrees(), want, 1e-3, "asin 1/n, indices of handbooks")
+	}
 	scene.Axis = nil
 	if l := untraced(t, scene, Settings{Wavelength: 589.3}).result().Columns[0].Limits; l != nil {
 		t.Errorf("without an axis there must be none: %v", l)
@@ -456,11 +563,14 @@ func untraced(t *testing.T, scene Scene, settings Settings) *run {
 func TestAxisBreaksSymmetry(t *testing.T) {
 	scene := Scene{Stone: brilliant(t), Material: ofIndices(t, "zircon", 1.925, 1.984),
 		Surroundings: Around(plain(t, "air", 1))}
+	scene.Plane = &mgl64.Vec3{1, 0, 0}
+	zircon, topaz := scene.Material, ofIndices(t, "topaz", topaz[:]...)
 	for _, row := range []struct {
+		stone  *gems.Material
 		axis   *mgl64.Vec3
 		images int
-	}{{nil, 16}, {&mgl64.Vec3{0, 0, -3}, 16}, {&mgl64.Vec3{0.1, 0, 1}, 1}} {
-		scene.Axis = row.axis
+	}{{zircon, nil, 16}, {zircon, &mgl64.Vec3{0, 0, -3}, 16}, {zircon, &mgl64.Vec3{0.1, 0, 1}, 1}, {topaz, &mgl64.Vec3{0, 0, 1}, 1}} {
+		scene.Material, scene.Axis = row.stone, row.axis
 		if got := untraced(t, scene, Settings{Wavelength: 550}).images; got != row.images {
 			t.Errorf("axis %v: %d images of a sector, want %d", row.axis, got, row.images)
 		}

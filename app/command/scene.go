@@ -1,7 +1,6 @@
 package command
 
 import (
-	"errors"
 	"fmt"
 	"math"
 	"os"
@@ -23,7 +22,7 @@ type sceneFlags struct {
 	Film       []string `sep:"none" placeholder:"TIERS=INDEX:NM" help:"A film on some tiers: its refractive index and thickness, then after colons, where wanted, its extinction and the optical depth of the dust in it. May be given again."`
 	Ground     string   `type:"word" placeholder:"R" help:"Diffuse ground under the stone that sends back this share of light, 0 to 1: white paper is 0.8 or so."`
 	Setting    string   `type:"word" placeholder:"R[,OPEN]" help:"Diffuse wall right behind the pavilion that sends back this share of light; OPEN is the share of the pavilion's depth left open at the culet."`
-	Body       string   `type:"word" placeholder:"COLOUR:MM" help:"Body colour #rrggbb as seen through so many mm of daylight; COLOUR/COLOUR for ordinary and extraordinary ray."`
+	Body       string   `type:"word" placeholder:"COLOUR:MM" help:"Body colour #rrggbb as seen through so many mm of daylight; COLOUR/COLOUR for ordinary and extraordinary ray, three for alpha, beta and gamma."`
 	Axis       string   `type:"word" placeholder:"TILT,AZIM[,SPIN]" help:"How the crystal lies in the stone: both rays of a doubly refracting stone are followed. Direction of the optic axis, of a biaxial stone of the acute bisectrix, in degrees from the table's normal and around it; SPIN turns the plane of the two optic axes about the bisectrix, from the plane that holds the table's normal (0). plan takes the plan's axis."`
 	Light      string   `default:"even" type:"word" placeholder:"NAME" help:"The light: ${lights}, or the path of a .hdr panorama (${default})."`
 	Illuminant string   `type:"word" placeholder:"NAME" help:"Another spectrum for the light: ${illuminants}."`
@@ -100,7 +99,7 @@ func (f *sceneFlags) scene(library *gems.Library, s *subject) (trace.Scene, erro
 		scene.Axis, scene.Plane = &axis, &plane
 	}
 	if f.Body != "" {
-		a, err := readBody(f.Body)
+		a, err := readBody(f.Body, s.material)
 		if err != nil {
 			return scene, err
 		}
@@ -263,23 +262,38 @@ func readFilm(text string) (trace.Coating, error) {
 	return c, nil
 }
 
-// readBody reads COLOUR:MM or COLOUR/COLOUR:MM.
-func readBody(text string) (*gems.Absorption, error) {
-	colours, thickness, ok := strings.Cut(text, ":")
+// readBody reads COLOUR:MM, or more colours with slashes between: one for each ray of the
+// material; nil where there are several.
+func readBody(text string, material *gems.Material) (*gems.Absorption, error) {
+	written, thickness, ok := strings.Cut(text, ":")
 	mm, err := strconv.ParseFloat(thickness, 64)
 	if !ok || err != nil {
 		return nil, commandFaultf("--body %q: write a colour and the millimetres it was seen through, such as #a03048:5", text)
 	}
-	first, second, two := strings.Cut(colours, "/")
-	if !two {
-		second = first
+	var colours []gems.Colour
+	for _, part := range strings.Split(written, "/") {
+		c, err := gems.ParseColour(part)
+		if err != nil {
+			return nil, commandFaultf("--body: %w", err)
+		}
+		colours = append(colours, c)
 	}
-	o, err1 := gems.ParseColour(first)
-	e, err2 := gems.ParseColour(second)
-	if err := errors.Join(err1, err2); err != nil {
-		return nil, commandFaultf("--body: %w", err)
+	if n := len(colours); n > 1 && material != nil && n != len(material.Rays) {
+		more := [...]string{"", "", ", or two with a slash between, for its ordinary and extraordinary ray",
+			", or three with slashes between, for alpha, beta and gamma"}[len(material.Rays)]
+		return nil, commandFaultf("--body %q: %s is %v: give one colour%s", text, material.Name, material.Character(), more)
 	}
-	a, err := gems.ColouredBody(o, e, mm)
+	var a *gems.Absorption
+	switch len(colours) {
+	case 1:
+		a, err = gems.ColouredBody(colours[0], colours[0], mm)
+	case 2:
+		a, err = gems.ColouredBody(colours[0], colours[1], mm)
+	case 3:
+		a, err = gems.ThreeColouredBody(colours[0], colours[1], colours[2], mm)
+	default:
+		return nil, commandFaultf("--body %q: no stone has more than three rays: give one to three colours", text)
+	}
 	if err != nil {
 		return nil, commandFaultf("--body: %w", err)
 	}

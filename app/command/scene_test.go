@@ -102,6 +102,9 @@ func TestScene(t *testing.T) {
 	if strings.Contains(text, "as if singly refracting") || !strings.Contains(three(), "as if singly refracting") {
 		t.Error("whether topaz is followed as doubly refracting must be told right")
 	}
+	if text := three("--axis", "0,0", "--body", "#e0e0a0/#3030c0/#a040c0:4"); !strings.Contains(text, "#3030c0 along beta") {
+		t.Errorf("three colours are not told: %s", text)
+	}
 	plan, err := os.ReadFile("../../testdata/plans/round.toml")
 	if err != nil {
 		t.Fatal(err)
@@ -159,6 +162,10 @@ func TestSceneFaults(t *testing.T) {
 		{[]string{"--setting", "0.5,0.5,0.5"}, "1 or 2 numbers"},
 		{[]string{"--body", "purple:3"}, "#rrggbb"},
 		{[]string{"--body", "#102030"}, "millimetres"},
+		{[]string{"--body", "#102030/#203040/#304050:4"}, "give one colour, or two"},
+		{[]string{"--body", "#102030/#203040:4", "--material", "topaz"}, "or three with slashes between"},
+		{[]string{"--body", "#102030/#203040:4", "--material", "spinel"}, "give one colour"},
+		{[]string{"--body", "#102030/#203040/#1:4", "--material", "topaz"}, "#rrggbb"},
 		{[]string{"--axis", "10"}, "2 or 3 numbers"},
 		{[]string{"--axis", "1,2,3,4"}, "2 or 3 numbers"},
 		{[]string{"--axis", "90,1e9"}, "-360 to 360"},

@@ -224,7 +224,7 @@ func (t *tellCommand) ready(library *gems.Library) (*teller, error) {
 		r.job.Lights = append(r.job.Lights, light)
 	}
 	if t.Body != "" {
-		if r.job.Body, err = readBody(t.Body); err != nil {
+		if r.job.Body, err = readBody(t.Body, nil); err != nil {
 			return nil, err
 		}
 	}
