@@ -32,6 +32,10 @@ func hiddenWindow(platform glfw.Platform) error {
 		return err
 	}
 	glfw.WindowHint(glfw.Visible, glfw.False)
+	// The window library sets no class, by which an X11 desktop finds the program's entry
+	// and icon (StartupWMClass); what is set here stays until its own window is made.
+	glfw.WindowHintString(glfw.X11ClassName, "Pavilight")
+	glfw.WindowHintString(glfw.X11InstanceName, "pavilight")
 	window, err := glfw.CreateWindow(16, 16, "Pavilight", nil, nil)
 	if err != nil {
 		glfw.Terminate()
