@@ -439,7 +439,7 @@ func (v *victim) kill(t *testing.T, n *tally) {
 
 // harm kills the command so many times.
 func (v *victim) harm(t *testing.T, kills int) (n tally) {
-	for n.kills < kills && n.late < 4*kills+20 && !t.Failed() {
+	for n.kills < kills && n.late < 20*kills+50 && !t.Failed() {
 		v.kill(t, &n)
 	}
 	if n.kills < kills {
