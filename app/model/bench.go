@@ -29,7 +29,7 @@ type Bench struct {
 	do       func(func())
 	onChange func()
 	tiers    tierList
-	saves    []*saving // the first is under way
+	saves    []*saving // the first to each path is under way
 }
 
 // NewBench returns a bench with the plan on it, its maps not yet asked for: see
@@ -169,17 +169,23 @@ func (b *Bench) put(doc *Document) {
 // Save writes the present plan to path on another goroutine, as a whole or not at all,
 // and tells done. A file that other hands have written to since it was read is left as it
 // is, with an error that is disk.ErrChanged, but where over says that the user knows: then,
-// and under a new name, whatever is there is replaced. Saves follow each other in the order
-// in which they are asked for. A recovery, which may be nil, keeps the plan until it is
-// safely in its file, and forgets it then.
+// and under a new name, whatever is there is replaced. Saves to one path follow each other
+// in the order in which they are asked for; one to another path does not wait for a drive
+// that does not answer. A recovery, which may be nil, keeps the plan until it is safely in
+// its file, and forgets it then.
 func (b *Bench) Save(path string, over bool, recovery *Recovery, done func(error)) {
 	doc := b.Doc
 	doc.Settle()
 	s := &saving{doc: doc, plan: doc.Plan(), path: path, over: over, recovery: recovery, done: done}
-	b.saves = append(b.saves, s)
-	if len(b.saves) == 1 {
+	waits := b.writing(path)
+	if b.saves = append(b.saves, s); !waits {
 		b.write(s)
 	}
+}
+
+// writing reports whether a plan is being written to the path.
+func (b *Bench) writing(path string) bool {
+	return slices.ContainsFunc(b.saves, func(s *saving) bool { return s.path == path })
 }
 
 // KeepMine keeps the plan as it is here although other hands wrote to its file, of which
@@ -189,8 +195,8 @@ func (b *Bench) KeepMine() {
 	b.onChange()
 }
 
-// Saving reports whether a plan is being written just now.
-func (b *Bench) Saving() bool { return len(b.saves) > 0 }
+// Saving reports whether the plan's file is being written just now.
+func (b *Bench) Saving() bool { return b.writing(b.Doc.Path) }
 
 // saving is one wish to write a plan.
 type saving struct {
@@ -202,7 +208,7 @@ type saving struct {
 	done     func(error)
 }
 
-// write carries out the first of the saves that wait, and then the next.
+// write carries out a save, and then the next to the same path.
 func (b *Bench) write(s *saving) {
 	work := Work{Plan: s.plan, Path: s.doc.Path, Known: s.doc.known}
 	checked := !s.over && s.path == s.doc.Path
@@ -217,15 +223,15 @@ func (b *Bench) write(s *saving) {
 			s.recovery.Drop(turn)
 		}
 		b.do(func() {
-			if err == nil {
+			if err == nil && s.doc.Path == work.Path { // else it goes by another name since
 				s.doc.saved(s.plan, s.path, now)
 			}
-			b.saves = b.saves[1:]
+			b.saves = slices.DeleteFunc(b.saves, func(other *saving) bool { return other == s })
+			if i := slices.IndexFunc(b.saves, func(next *saving) bool { return next.path == s.path }); i >= 0 {
+				b.write(b.saves[i])
+			}
 			b.onChange()
 			s.done(err)
-			if len(b.saves) > 0 {
-				b.write(b.saves[0])
-			}
 		})
 	}()
 }

@@ -10,6 +10,7 @@ import (
 	"strings"
 	"testing"
 	"testing/synctest"
+	"time"
 
 	"github.com/go-gl/mathgl/mgl64"
 
@@ -456,6 +457,43 @@ func TestSavingLeavesWhatOthersWrote(t *testing.T) {
 			t.Errorf("with the user's word: %v, modified %v", err, p.Doc.Modified())
 		}
 		p.save(t, path) // and from then on as usual
+		p.Look.Close()
+		p.window.settle()
+	})
+}
+
+// A file that cannot be had just now, as on a drive that does not answer, keeps nobody from
+// saving elsewhere, and when it answers at last the plan goes on under the new name.
+func TestSavingElsewhereDoesNotWait(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		p := newPlace(t)
+		folder := t.TempDir()
+		slow, quick := filepath.Join(folder, "slow.toml"), filepath.Join(folder, "quick.toml")
+		p.save(t, slow)
+		lock, err := disk.LockFile(slow)
+		if err != nil {
+			t.Fatal(err)
+		}
+		var order []string
+		save := func(path string) {
+			p.Save(path, false, nil, func(err error) {
+				if err != nil {
+					t.Error(err)
+				}
+				order = append(order, filepath.Base(path))
+				if path == quick {
+					lock.Release()
+				}
+			})
+		}
+		save(slow)
+		save(quick)
+		p.window.settle()
+		time.Sleep(time.Second)
+		p.window.settle()
+		if got := strings.Join(order, " "); got != "quick.toml slow.toml" || p.Doc.Path != quick || p.Doc.Modified() {
+			t.Errorf("saved %s; the plan is in %s, modified %v", got, p.Doc.Path, p.Doc.Modified())
+		}
 		p.Look.Close()
 		p.window.settle()
 	})
