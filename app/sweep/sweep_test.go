@@ -424,46 +424,6 @@ func TestParseOver(t *testing.T) {
 	}
 }
 
-// Whatever a file holds, it is read without a panic, and what is read as whole is what
-// was written.
-func FuzzRead(f *testing.F) {
-	whole := `{"sweep":1,"verb":"look","jobs":2,"list":"x","programs":["p"],"kernels":["k"],"shard":1,"of":1,"rows":0}` + "\n" +
-		`{"job":1,"file":"a","settings":{},"key":"k","result":{"media":[{"a":1}]}}` + "\n"
-	f.Add([]byte(whole))
-	f.Add([]byte(whole[:len(whole)-9]))
-	f.Add([]byte(strings.Replace(whole, `"job":1`, `"job":3`, 1)))
-	f.Add([]byte(`{"sweep":1,"jobs":-5}` + "\n"))
-	f.Add([]byte(strings.Repeat("[", 20000) + "\n"))
-	f.Fuzz(func(t *testing.T, text []byte) {
-		head, rows, err := read(bytes.NewReader(text))
-		if err != nil {
-			return
-		}
-		for i := range rows {
-			if !bytes.Contains(text, rows[i].text) || rows[i].Job > head.Jobs {
-				t.Errorf("row %q of %q", rows[i].text, text)
-			}
-		}
-		var b bytes.Buffer
-		(&Results{head.Identity, rows}).WriteTable(&b) // may refuse, must not fall
-	})
-}
-
-func FuzzList(f *testing.F) {
-	f.Add("plan.toml --tilt 10\n# a\n'b c' \"d\"e\n")
-	f.Fuzz(func(t *testing.T, text string) {
-		lines, err := ReadList(strings.NewReader(text), "list")
-		if err == nil && len(lines) == 0 {
-			t.Error("no line and no error")
-		}
-		for _, l := range lines {
-			for _, w := range l.Words {
-				ParseOver(w, func(string) bool { return true })
-			}
-		}
-	})
-}
-
 // Whatever a file of results holds, it is refused or its rows can be written, read again
 // and put into a table.
 func FuzzReadResults(f *testing.F) {
@@ -488,6 +448,7 @@ func FuzzReadResults(f *testing.F) {
 	f.Add(whole[:len(whole)-20])
 	head, rows, _ := bytes.Cut(whole, []byte("\n"))
 	f.Add(append(bytes.Replace(head, []byte(`"rows_sha256"`), []byte(`"x"`), 1), append([]byte("\n"), rows...)...))
+	f.Add([]byte(`{"sweep":1,"jobs":2}` + "\n" + `{"job":3,"settings":{},"result":{}}` + "\n"))
 	f.Add([]byte(`{"sweep":1,"jobs":2147483648,"of":-1}` + "\n"))
 	f.Add([]byte(`{"sweep":1,"jobs":9,"shard":1,"of":1}` + "\n" + `{"job":1,"settings":{"a":[[1]],"b":{"c":null}},"result":[{"":"="}]}` + "\n"))
 	path := filepath.Join(folder, "fuzz.jsonl")
@@ -501,6 +462,11 @@ func FuzzReadResults(f *testing.F) {
 				t.Errorf("rows beside %v", err)
 			}
 			return
+		}
+		for i := range rows {
+			if rows[i].Job > head.Jobs || !bytes.Contains(data, rows[i].text) {
+				t.Errorf("row %q of %d jobs", rows[i].text, head.Jobs)
+			}
 		}
 		results := Results{Identity: head.Identity, lines: rows}
 		var table bytes.Buffer
