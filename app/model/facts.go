@@ -91,6 +91,15 @@ func indexWords(w *words.Words, teeth []float64) string {
 	return strings.Join(all, " ")
 }
 
+// StoneIndex writes the stone's refractive index, as the maps have it; empty before there
+// are any.
+func (l *Look) StoneIndex() string {
+	if l.Frame == nil || len(l.Frame.Result.Columns) == 0 {
+		return ""
+	}
+	return l.words.Say("%.3f", l.Frame.Result.Columns[0].IndexStone)
+}
+
 // LightInWords says how the stone is looked at, for the status line.
 func (l *Look) LightInWords() string {
 	s := l.settings
@@ -103,7 +112,7 @@ func (l *Look) LightInWords() string {
 	if s.Wavelength != 0 {
 		waves = s.Wavelength.String()
 	}
-	polarisation := say("polarisation carried along")
+	polarisation := say("polarisation tracked in full")
 	if s.Averaged {
 		polarisation = say("polarisation averaged at every facet")
 	}

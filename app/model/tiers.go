@@ -122,7 +122,7 @@ func detail(w *words.Words, t *facets.Tier, gear int) string {
 	s := t.Stop
 	switch s.Rule {
 	case facets.StopDistance:
-		add("%.4g from the origin", s.Value)
+		add("distance %.4g", s.Value)
 	case facets.StopCentre:
 		add("to %.4g on the axis", s.Value)
 	case facets.StopMeet:

@@ -7,6 +7,7 @@ import (
 	"io/fs"
 	"path/filepath"
 	"runtime"
+	"slices"
 	"strings"
 	"sync"
 	"sync/atomic"
@@ -109,6 +110,7 @@ type Tune struct {
 	aimsUsed      []tune.Aim      // likewise
 	limitsUsed    tune.Limits     // likewise
 	planUsed      *facets.Plan    // likewise
+	faceUpUsed    bool            // likewise: at no other tilt
 
 	do       func(func())
 	onChange func()
@@ -311,6 +313,7 @@ func (t *Tune) Begin() {
 	ctx, cancel := context.WithCancel(context.Background())
 	t.number++
 	t.variablesUsed, t.aimsUsed, t.limitsUsed, t.planUsed = p.Variables, p.Goal.Aims, p.Limits, t.plan
+	t.faceUpUsed = !slices.ContainsFunc(p.Goal.Cases, func(c tune.Case) bool { return c.View.Tilt != 0 })
 	t.Running, t.Phase, t.Done, t.cancel, t.finished = true, t.words.Say(t.Task.doing()), 0, cancel, make(chan struct{})
 	r := &tuneRun{tune: t, number: t.number, problem: p, task: t.Task, to: t.To, machine: t.Machine, draws: t.Draws, cells: t.Cells, keep: t.KeepFile,
 		plan: t.plan, choose: t.frozen(), pace: newPace()}

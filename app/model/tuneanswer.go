@@ -163,6 +163,14 @@ const nearLoss = 0.02
 // Verdict says what the answer is worth, in words that its numbers bear, a paragraph each;
 // empty before there is one.
 func (t *Tune) Verdict() []string {
+	lines := t.answerWords()
+	if len(lines) > 0 && t.Tolerance == nil && t.Trouble == nil && t.faceUpUsed {
+		lines = append(lines, t.words.Say("Judged face-up only, not rocked."))
+	}
+	return lines
+}
+
+func (t *Tune) answerWords() []string {
 	switch {
 	case t.Moved != nil:
 		return t.movedWords()
@@ -199,7 +207,8 @@ func (t *Tune) outcomeWords(o *tune.Outcome, vs []tune.Variable) (lines []string
 	}
 	for i, v := range vs {
 		if x := o.Best.Values[i]; v.High > v.Low && (x < v.Low+v.Step*0.999 || x > v.High-v.Step*0.999) {
-			lines = append(lines, t.words.Say("%s stands at its limit: wider ones may do better.", VariableName(t.words, v)))
+			lines = append(lines, t.words.Say("%s stands at a limit of its %s to %s: wider ones may do better.",
+				VariableName(t.words, v), t.valueWords(v, v.Low), t.valueWords(v, v.High)))
 		}
 	}
 	for i, near := range o.Nearby {

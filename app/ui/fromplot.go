@@ -86,7 +86,7 @@ type fromPlotRenderer struct {
 
 func (r *fromPlotRenderer) Destroy()                     {}
 func (r *fromPlotRenderer) Objects() []fyne.CanvasObject { return r.objects }
-func (r *fromPlotRenderer) MinSize() fyne.Size           { return fyne.NewSize(160, 120) }
+func (r *fromPlotRenderer) MinSize() fyne.Size           { return fyne.NewSize(160, 114) }
 
 func (r *fromPlotRenderer) Layout(size fyne.Size) {
 	const left, right, below, above = 30, 10, 18, 14
@@ -98,33 +98,21 @@ func (r *fromPlotRenderer) Layout(size fyne.Size) {
 	place(r.rules[0], x(0), above, wide*float32(min(90, p.head)/90), high)
 	place(r.rules[1], left, above+high, wide, 1)
 	place(r.rules[2], left, above, 1, high)
-	var taken []fyne.Position
+	curves := make([][]fyne.Position, columns)
 	for j := range columns {
-		middle := func(i int) fyne.Position {
-			return fyne.NewPos(x(float64(5*i)+2.5), y(p.curves[j][i]))
+		for i, share := range p.curves[j] {
+			curves[j] = append(curves[j], fyne.NewPos(x(float64(5*i)+2.5), y(share)))
 		}
-		best := 0
 		for i, l := range r.lines[j] {
-			l.Position1, l.Position2 = middle(i), middle(i+1)
+			l.Position1, l.Position2 = curves[j][i], curves[j][i+1]
 			l.Hidden = !p.known
-			if p.curves[j][i+1] > p.curves[j][best] {
-				best = i + 1
-			}
 		}
-		// The name stands over the highest place of its curve, higher where another is. Each
-		// move leads up by more than keeps names apart, rounding or not, so it comes to an end.
-		const apart, move = 11, 12
-		text, peak := r.names[j].MinSize(), middle(best)
-		at := fyne.NewPos(min(peak.X-text.Width/2, left+wide-text.Width), peak.Y-text.Height)
-		for again := true; again; {
-			again = false
-			for _, t := range taken {
-				if dx, dy := at.X-t.X, at.Y-t.Y; dx > -text.Width && dx < 30 && dy > -apart && dy < apart {
-					at.Y, again = t.Y-move, true
-				}
-			}
-		}
-		taken = append(taken, at)
+	}
+	taken := []area{{x(0), above - 13, 30, 12}} // the word over the head
+	for j := range columns {
+		text := r.names[j].MinSize()
+		at := spotAt(j, text, curves, taken, area{left + 2, 0, wide - 2, above + high})
+		taken = append(taken, area{at.X, at.Y, text.Width, text.Height})
 		place(r.names[j], at.X, at.Y, text.Width, text.Height)
 		r.names[j].Hidden = !p.known
 	}

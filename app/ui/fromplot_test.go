@@ -4,8 +4,14 @@ import (
 	"testing"
 
 	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/canvas"
 	"fyne.io/fyne/v2/test"
 )
+
+// boxOf is where a text stands, less the air over and under it.
+func boxOf(t *canvas.Text, air float32) area {
+	return area{t.Position().X, t.Position().Y + air, t.MinSize().Width, t.MinSize().Height - 2*air}
+}
 
 // TestNamesOfCurvesStandApart lays out curves whose peaks lie at the same place, at many
 // sizes: rounding must not keep the names from coming to rest, and none covers another.
@@ -23,8 +29,9 @@ func TestNamesOfCurvesStandApart(t *testing.T) {
 			r.Layout(fyne.NewSize(230, height))
 			for i, a := range r.names {
 				for _, b := range r.names[:i] {
-					if d := a.Position().Y - b.Position().Y; d > -10 && d < 10 {
-						t.Fatalf("height %v: %q and %q lie %v apart", height, a.Text, b.Text, d)
+					const air = 2 // over and under the ink
+					if boxOf(a, air).meets(boxOf(b, air)) {
+						t.Fatalf("height %v: %q at %v and %q at %v", height, a.Text, a.Position(), b.Text, b.Position())
 					}
 				}
 			}

@@ -222,7 +222,7 @@ func (g *grid) refreshHeadings() {
 		g.critical[j].setText(h.Critical)
 		light := ""
 		if g.bench.Look.ShowsColour() {
-			light = g.words.Say("colour under: %s", model.LightName(lights[j]))
+			light = g.words.Say(model.LightName(lights[j]))
 		}
 		g.shining[j].setText(light)
 	}

@@ -39,7 +39,7 @@ func TestLookIsRemembered(t *testing.T) {
 	head := r.grid.headHeight()
 	r.grid.setRow(0, model.TrueColour)
 	childOf(t, r.grid.mediaItems(1), "Light of true colour", "small lamps").Action()
-	if got := r.grid.shining[1].text; got != "colour under: small lamps" {
+	if got := r.grid.shining[1].text; got != "small lamps" {
 		t.Errorf("over the column stands %q", got)
 	}
 	if r.grid.headHeight() <= head {

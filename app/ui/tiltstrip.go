@@ -155,8 +155,8 @@ func (r *tiltStripRenderer) Layout(size fyne.Size) {
 	r.frame.Resize(size)
 	width := size.Width - curveNames
 	pitch := width / tiltStops
-	place(r.top, 0, 0, width, 1)
-	place(r.bottom, 0, curveHigh, width, 1)
+	place(r.top, 0, 0, width-pitch/2, 1)
+	place(r.bottom, 0, curveHigh, width-pitch/2, 1)
 	edge := min(smallMap, pitch-4)
 	for i := range tiltStops {
 		x := float32(i) * pitch
@@ -170,7 +170,7 @@ func (r *tiltStripRenderer) Layout(size fyne.Size) {
 		share, known := s.look.StripShare(stop, column)
 		return fyne.NewPos((float32(stop)+0.5)*pitch, curveHigh*(1-float32(share))), known
 	}
-	var taken []float32
+	var ends []float32
 	for j := range columns {
 		for i, l := range r.lines[j] {
 			a, known := at(i, j)
@@ -180,18 +180,12 @@ func (r *tiltStripRenderer) Layout(size fyne.Size) {
 		}
 		end, known := at(tiltStops-1, j)
 		r.names[j].Hidden = !known
+		ends = append(ends, end.Y)
+	}
+	const apart = 12 // names over each other, which keep off the small maps
+	for j, y := range spread(ends, apart, 2, curveHigh-4) {
 		text := r.names[j].MinSize()
-		y := end.Y - text.Height/2
-		for again := true; again; { // names that would lie on each other move down
-			again = false
-			for _, t := range taken {
-				if d := y - t; d > -10 && d < 10 {
-					y, again = t+10, true
-				}
-			}
-		}
-		taken = append(taken, y)
-		place(r.names[j], width-pitch/2+8, y, text.Width, text.Height)
+		place(r.names[j], width-pitch/2+8, y-text.Height/2, text.Width, text.Height)
 	}
 }
 

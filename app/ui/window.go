@@ -33,11 +33,12 @@ type window struct {
 
 	// header
 	header   *fyne.Container
-	headed   [3]int // letters of the words at its left when they were laid out
+	headed   [4]int // letters of the words at its left when they were laid out
 	title    *line
 	material *chooser
 	width    *numberField
 	weight   *line
+	index    *line // refractive, of the stone
 	doors    [rooms]*roomButton
 	state    *line
 	progress *progressLine
@@ -60,7 +61,7 @@ type window struct {
 	solid    *solidView
 	facts    *factTable
 	from     *fromPlot
-	factBox  *container.Scroll
+	factBox  *fyne.Container
 	rayBox   *fyne.Container
 	rayTitle *wrapped
 	ray      *rayList
@@ -125,6 +126,7 @@ func (w *window) build() {
 		func(v float64) string { return w.words.Say("%.2f", v) }, 0.1)
 	w.width.commit, w.width.trouble = w.bench.SetWidth, w.say
 	w.weight = newWord(colourDim, theme.SizeNameText, "")
+	w.index = newWord(colourDim, theme.SizeNameText, "")
 	for r := range rooms {
 		w.doors[r] = newRoomButton(w.words.Say(r.name()), func() { w.enter(r) })
 	}
@@ -248,14 +250,14 @@ func (w *window) content() fyne.CanvasObject {
 
 func (w *window) headerBar() fyne.CanvasObject {
 	unit := newWord(colourDim, theme.SizeNameText, "mm")
-	left := container.NewHBox(w.title, gap(6), w.material, gap(2),
+	left := container.NewHBox(w.title, gap(6), w.material, w.index, gap(2),
 		container.NewGridWrap(fyne.NewSize(58, w.width.MinSize().Height), w.width), unit, gap(4), w.weight)
 	doors := container.New(layout.NewCustomPaddedHBoxLayout(2))
 	for _, d := range w.doors {
 		doors.Add(d)
 	}
 	right := container.New(&progressLayout{}, w.state, w.progress, w.stop)
-	w.header, w.headed = container.New(&headerLayout{w.title, w.weight}, left, doors, right), [3]int{}
+	w.header, w.headed = container.New(&headerLayout{w.title, w.weight}, left, doors, right), [4]int{}
 	return container.NewStack(ground(colourPane), container.New(layout.NewCustomPaddedLayout(4, 4, 14, 10), w.header))
 }
 
@@ -307,9 +309,11 @@ func (w *window) stonePane() fyne.CanvasObject {
 		pose("Culet", tipFaceDown, solid.FaceDown), pose("Askew", tipAskew, restingPose))
 	top := container.New(&squareLayout{}, w.solid, poses)
 	whence := newWord(theme.ColorNameForeground, theme.SizeNameText, w.words.Say("Where it comes from")).bold()
-	under := newLine(colourDim, theme.SizeNameCaptionText).with(w.words.Say("share of returned light by angle from the eye"))
-	w.factBox = container.NewVScroll(container.New(layout.NewCustomPaddedLayout(8, 8, 14, 10),
-		container.New(layout.NewCustomPaddedVBoxLayout(3), w.facts.box, gap(1), whence, under, w.from)))
+	under := newLine(colourDim, theme.SizeNameCaptionText).with(w.words.Say("returned light by angle from the eye"))
+	// The measures scroll where they need more room; the curve keeps its own.
+	w.factBox = container.NewBorder(nil, container.New(layout.NewCustomPaddedLayout(2, 6, 14, 10),
+		container.New(layout.NewCustomPaddedVBoxLayout(1), whence, under, w.from)), nil, nil,
+		container.NewVScroll(container.New(layout.NewCustomPaddedLayout(8, 2, 14, 10), w.facts.box)))
 	w.rayBox = w.buildRayBox()
 	w.rayBox.Hide()
 	return pane(container.NewBorder(top, nil, nil, nil, container.NewStack(w.factBox, w.rayBox)))
@@ -390,6 +394,8 @@ func (w *window) onLook(c model.Change) {
 		other := f != nil && (w.told == nil || w.told.Subject != f.Subject || w.told.Settings != f.Settings)
 		if w.ledgers.due(final || other) {
 			w.told = f
+			w.index.setText(w.bench.Look.StoneIndex())
+			w.fitHeader()
 			w.grid.refreshHeadings()
 			w.grid.refreshLedger()
 			w.refreshFrom()
@@ -472,12 +478,13 @@ func (w *window) refreshFacts() {
 	facts := w.bench.Facts()
 	w.facts.show(facts)
 	w.weight.setText(w.bench.Weight())
+	w.index.setText(w.bench.Look.StoneIndex())
 	w.fitHeader()
 }
 
 // fitHeader lays the header out anew where its words have become longer or shorter.
 func (w *window) fitHeader() {
-	now := [3]int{len(w.title.text), len(w.material.text), len(w.weight.text)}
+	now := [4]int{len(w.title.text), len(w.material.text), len(w.index.text), len(w.weight.text)}
 	if w.header != nil && now != w.headed {
 		w.headed = now
 		w.header.Refresh()
