@@ -116,7 +116,7 @@ func (k *cutCommand) Run(c call) error {
 	}
 	bar.clear()
 	for _, s := range sheets {
-		for _, note := range s.Notes() {
+		for _, note := range s.Notes(nil) {
 			c.warn("%s: %s", s.Plan.Name, note)
 		}
 	}

@@ -296,7 +296,7 @@ func (c *Cut) Notes() []string {
 	if c.Sheet == nil {
 		return nil
 	}
-	notes := c.Sheet.Notes()
+	notes := c.Sheet.Notes(c.words)
 	if c.Stopped && c.Wish.Maps && c.Sheet.Light == nil {
 		notes = append(notes, c.words.Say("stopped: the sheet is without its maps and ledger"))
 	}

@@ -41,10 +41,10 @@ func (c *Cut) Film() (FilmStep, bool) {
 	add("Set", say("%.2f°", r.Reading.Degrees()))
 	var indices []string
 	for _, set := range r.Settings {
-		indices = append(indices, set.String())
+		indices = append(indices, c.words.Decimal(set.String()))
 	}
 	add("Index", strings.Join(indices, "  "))
-	add("Until", strings.TrimPrefix(r.Stop, "until "))
+	add("Until", strings.TrimPrefix(s.StopIn(c.words, r), say("until ")))
 	before := c.Off(c.Step - 1)
 	if len(r.Step.New) == 0 {
 		add("Takes off", say("nothing of this rough"))
@@ -68,7 +68,7 @@ func (c *Cut) filmOfRough() FilmStep {
 	rough := say("a box %.0f %% larger than the stone; the plan names no rough", 100*facets.BlockMargin)
 	switch {
 	case c.Sheet.Rough.Stone != nil:
-		rough = c.Sheet.Rough.Words
+		rough = c.words.Text(c.Sheet.Rough.Words)
 	case c.Sheet.Rough.TooSmall:
 		rough = say("a box around the stone; the plan's rough does not hold it along its axes")
 	}

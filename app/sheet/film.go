@@ -13,7 +13,7 @@ func (l *press) film() {
 	l.begin("Step by step – "+s.Plan.Name, "Step by step", 0.6*s.Paper.Height)
 	from := fmt.Sprintf("from a box %.0f %% larger than the stone", 100*facets.BlockMargin)
 	if s.Rough.Stone != nil {
-		from = "from the plan's rough, " + s.Rough.Words
+		from = "from the plan's rough, " + s.Rough.Words.String()
 	}
 	l.paragraph(l.body(), pale(), fmt.Sprintf("The stone after each step, %s, seen from the lap. "+
 		"Grey: what is left of the rough. Dark: what the step cut. Off: what it takes off, of the rough; layer: the thickest part of it.", from))

@@ -129,7 +129,7 @@ func (s *Sheet) roughWords() string {
 	_, extent := middleOf(s.Solution.Stone)
 	a := 2 * s.Rough.AllowanceMM
 	box := extent.Add(mgl64.Vec3{a, a, a})
-	volume, words := s.Rough.VolumeMM3, s.Rough.Words
+	volume, words := s.Rough.VolumeMM3, s.Rough.Words.String()
 	if volume == 0 {
 		volume = box[0] * box[1] * box[2]
 		smallest := fmt.Sprintf("smallest box with %.2f mm all round %s", s.Rough.AllowanceMM, sizes(box[0], box[1], box[2]))
@@ -488,7 +488,7 @@ func (s *Sheet) criticalWords() string {
 	}
 	return fmt.Sprintf("Light that comes straight down meets %s, the flattest pavilion tier, at its own %.2f°. "+
 		"Past the critical angle it turns back, short of it most leaks: %s stands %s.",
-		flattest.Tier.Name, flattest.Solved.Angle.Degrees(), flattest.Tier.Name, listed(parts))
+		flattest.Tier.Name, flattest.Solved.Angle.Degrees(), flattest.Tier.Name, listed(nil, parts))
 }
 
 // care sets what to mind with this material.

@@ -139,7 +139,7 @@ func (l *press) ringWords(facing facets.Side, left []string) string {
 	}
 	words += "."
 	if len(left) > 0 {
-		words += " Too small for their name: " + listed(left) + "; see the steps."
+		words += " Too small for their name: " + listed(nil, left) + "; see the steps."
 	}
 	return words
 }

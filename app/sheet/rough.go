@@ -5,6 +5,7 @@ import (
 
 	"github.com/go-gl/mathgl/mgl64"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
@@ -16,7 +17,7 @@ const usualAllowance = 0.3
 type Rough struct {
 	Stone       *facets.Stone // in the finished stone's frame; nil where the steps start from a block
 	VolumeMM3   float64       // of the plan's rough, 0 where it names none or only a scan
-	Words       string        // its sizes, empty where the plan names none
+	Words       words.Text    // its sizes, empty where the plan names none
 	AllowanceMM float64
 	TooSmall    bool // the rough does not hold the stone in any of the positions tried
 }
@@ -52,15 +53,15 @@ func roughOf(p *facets.Plan, stone *facets.Stone) Rough {
 	switch ref.Shape {
 	case "box":
 		r.VolumeMM3 = 8 * half(0) * half(1) * half(2)
-		r.Words = "box " + sizes(ref.SizeMM...)
+		r.Words = words.Later("box %s", sizes(ref.SizeMM...))
 	case "cylinder":
 		r.VolumeMM3 = math.Pi * half(0) * half(0) * ref.SizeMM[1]
-		r.Words = "cylinder " + sizes(ref.SizeMM...)
+		r.Words = words.Later("cylinder %s", sizes(ref.SizeMM...))
 	case "ellipsoid":
 		r.VolumeMM3 = 4 * math.Pi / 3 * half(0) * half(1) * half(2)
-		r.Words = "ellipsoid " + sizes(ref.SizeMM...)
+		r.Words = words.Later("ellipsoid %s", sizes(ref.SizeMM...))
 	default:
-		r.Words = "scan " + ref.File
+		r.Words = words.Later("scan %s", ref.File)
 	}
 	r.TooSmall = r.Stone == nil && ref.Shape != "scan"
 	return r

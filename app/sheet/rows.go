@@ -6,6 +6,7 @@ import (
 	"slices"
 	"strings"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
@@ -60,7 +61,7 @@ func (s *Sheet) rows(steps []facets.Step) ([]Row, error) {
 		} else {
 			r.Settings = lapOrder(r.Settings, s.Machine.Gear)
 		}
-		r.Stop, r.StopShort = s.stopWords(&r, true), s.stopWords(&r, false)
+		r.Stop, r.StopShort = s.stopWords(nil, &r, true), s.stopWords(nil, &r, false)
 		r.TooDeepMM, r.TooDeepPct = s.tooDeep(&r)
 		rows = append(rows, r)
 	}
@@ -119,48 +120,49 @@ func facingOf(tiers []facets.Tier) []facets.Side {
 	return faces // a plan of girdle facets alone is no solid; Pavilion is the zero Side
 }
 
+// StopIn says when to stop in a language, beginning with "until".
+func (s *Sheet) StopIn(in *words.Words, r *Row) string { return s.stopWords(in, r, true) }
+
 // stopWords says when to stop, with the machine's indices if they may be told.
-func (s *Sheet) stopWords(r *Row, indices bool) string {
+func (s *Sheet) stopWords(in *words.Words, r *Row, indices bool) string {
 	t, stop, mm := r.Tier, &r.Tier.Stop, s.Solution.Scale
 	several := len(r.Solved.Index) > 4
 	switch stop.Rule {
 	case facets.StopDistance:
 		d := r.Solved.Distance * mm
 		if t.Side == facets.Girdle {
-			words := fmt.Sprintf("until %.2f mm from the axis", d)
 			if s.opposite(r) {
-				words += fmt.Sprintf(": %.2f mm across opposite facets", 2*d)
+				return in.Say("until %.2f mm from the axis: %.2f mm across opposite facets", d, 2*d)
 			}
-			return words
+			return in.Say("until %.2f mm from the axis", d)
 		}
 		if r.Flat {
-			return s.heightWords(r, stands, d*sign(t.Side))
+			return s.heightWords(in, r, in.Say("until it stands"), " ", d*sign(t.Side))
 		}
-		return s.heightWords(r, "until its facets reach the axis", d/math.Cos(r.Solved.Angle.Radians())*sign(t.Side))
+		return s.heightWords(in, r, in.Say("until its facets reach the axis"), ", ", d/math.Cos(r.Solved.Angle.Radians())*sign(t.Side))
 	case facets.StopCentre:
 		z := sign(t.Side) * stop.Value * mm
-		what := "until it reaches the axis"
+		what := in.Say("until it reaches the axis")
 		if len(r.Solved.Index) > 2 {
-			what = "until all its facets meet in one point on the axis"
+			what = in.Say("until all its facets meet in one point on the axis")
 		}
-		return s.heightWords(r, what, z)
+		return s.heightWords(in, r, what, ", ", z)
 	case facets.StopMeet:
-		return s.meetWords(r, indices)
+		return s.meetWords(in, r, indices)
 	case facets.StopLevel:
-		return s.heightWords(r, "until its edge on the girdle runs level", stop.Value*mm)
+		return s.heightWords(in, r, in.Say("until its edge on the girdle runs level"), ", ", stop.Value*mm)
 	case facets.StopEdge:
-		return s.heightWords(r, "until its edge with "+stop.With+" runs level", stop.Value*mm)
+		return s.heightWords(in, r, in.Say("until its edge with %s runs level", stop.With), ", ", stop.Value*mm)
 	case facets.StopGirdle:
-		words := fmt.Sprintf("until %.2f mm of girdle is left", stop.Value*mm)
 		if several {
-			words += ", even all round"
+			return in.Say("until %.2f mm of girdle is left, even all round", stop.Value*mm)
 		}
-		return words
+		return in.Say("until %.2f mm of girdle is left", stop.Value*mm)
 	case facets.StopTable:
-		return fmt.Sprintf("until the table is %.2f mm wide (%.1f %% of the width)",
+		return in.Say("until the table is %.2f mm wide (%.1f %% of the width)",
 			stop.Value*s.Measures.WidthMM, 100*stop.Value)
 	case facets.StopCulet:
-		return fmt.Sprintf("until the culet flat is %.2f mm wide", stop.Value*s.Measures.WidthMM)
+		return in.Say("until the culet flat is %.2f mm wide", stop.Value*s.Measures.WidthMM)
 	}
 	return ""
 }
@@ -172,65 +174,58 @@ func sign(side facets.Side) float64 {
 	return 1
 }
 
-// stands begins what is said of a level flat that a distance stops.
-const stands = "until it stands"
-
 // heightWords tells a height over the plan's z = 0 as a distance that a gauge can
 // take: from the nearer line of the finished girdle, or, at the girdle itself, by the
-// rough that is left.
-func (s *Sheet) heightWords(r *Row, what string, z float64) string {
+// rough that is left. What goes before it is joined by comma.
+func (s *Sheet) heightWords(in *words.Words, r *Row, what, comma string, z float64) string {
 	const same = 0.005 // mm, what two decimals can tell
 	g := s.Measures.GirdleHeightMM
-	comma := ", "
-	if what == stands {
-		comma = " "
-	}
 	switch {
 	case z < g.Min-same:
-		return fmt.Sprintf("%s%s%.2f mm below the finished girdle's lower line", what, comma, g.Min-z)
+		return in.Say("%s%s%.2f mm below the finished girdle's lower line", what, comma, g.Min-z)
 	case z > g.Max+same:
-		return fmt.Sprintf("%s%s%.2f mm above the finished girdle's upper line", what, comma, z-g.Max)
+		return in.Say("%s%s%.2f mm above the finished girdle's upper line", what, comma, z-g.Max)
 	case r.Facing == facets.Pavilion:
 		top := g.Max + s.Measures.CrownHeightMM
-		return fmt.Sprintf("%s at the girdle line, with %.2f mm or more of rough left to the dop side",
+		return in.Say("%s at the girdle line, with %.2f mm or more of rough left to the dop side",
 			what, top-z+s.Rough.AllowanceMM)
 	case z > g.Min+same:
-		return fmt.Sprintf("%s%s%.2f mm above the girdle's lower line", what, comma, z-g.Min)
+		return in.Say("%s%s%.2f mm above the girdle's lower line", what, comma, z-g.Min)
 	default:
-		return what + " at the girdle line"
+		return in.Say("%s at the girdle line", what)
 	}
 }
 
 // meetWords names the corners that a tier is cut to by their facets.
-func (s *Sheet) meetWords(r *Row, indices bool) string {
+func (s *Sheet) meetWords(in *words.Words, r *Row, indices bool) string {
 	var corners []string
 	for _, corner := range r.Tier.Stop.Corners {
 		var marks []string
 		for _, m := range corner {
-			marks = append(marks, s.markWords(r, m, indices))
+			marks = append(marks, s.markWords(in, r, m, indices))
 		}
-		corners = append(corners, listed(marks))
+		corners = append(corners, listed(in, marks))
 	}
-	where := "the corner of"
+	where := words.Key("until it meets the corner of %s")
 	isAxis := func(m facets.Mark) bool { return m.Tier == facets.AxisName }
 	if len(corners) == 1 && slices.ContainsFunc(r.Tier.Stop.Corners[0], isAxis) {
-		where = "where they cross"
+		where = "until it meets where they cross %s"
 		if r.Tier.Side == facets.Pavilion {
-			where = "the culet point:"
+			where = "until it meets the culet point: %s"
 		}
 	}
-	words := "until it meets " + where + " " + strings.Join(corners, "; and the corner of ")
+	told := in.Say(where, strings.Join(corners, in.Say("; and the corner of ")))
 	if !r.Flat && len(r.Settings) > 1 {
-		words += "; likewise for each facet"
+		return in.Say("%s; likewise for each facet", told)
 	}
-	return words
+	return told
 }
 
 // markWords names a facet of a corner: P1 at 12, in the numbers that the machine shows
 // on the side where the tier that is named was cut.
-func (s *Sheet) markWords(r *Row, m facets.Mark, indices bool) string {
+func (s *Sheet) markWords(in *words.Words, r *Row, m facets.Mark, indices bool) string {
 	if m.Tier == facets.AxisName {
-		return "the axis"
+		return in.Say("the axis")
 	}
 	if !m.HasIndex || !indices {
 		return m.Tier
@@ -238,15 +233,15 @@ func (s *Sheet) markWords(r *Row, m facets.Mark, indices bool) string {
 	// What is cut on this side is told as this side's numbers; a facet of the other side
 	// lies in the dop and is told by the number at which it meets this side.
 	shown := s.Machine.Setting(s.Machine.Shown(m.Index, s.Plan.Gear, r.Facing))
-	return m.Tier + " at " + shown.String()
+	return in.Say("%s at %s", m.Tier, in.Decimal(shown.String()))
 }
 
 // listed joins words with commas and a last "and".
-func listed(words []string) string {
-	if len(words) < 2 {
-		return strings.Join(words, "")
+func listed(in *words.Words, all []string) string {
+	if len(all) < 2 {
+		return strings.Join(all, "")
 	}
-	return strings.Join(words[:len(words)-1], ", ") + " and " + words[len(words)-1]
+	return strings.Join(all[:len(all)-1], ", ") + in.Say(" and ") + all[len(all)-1]
 }
 
 // opposite reports whether every facet of the tier has one opposite.

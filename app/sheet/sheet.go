@@ -16,6 +16,7 @@ import (
 	"time"
 
 	"pavilight/app/drawing"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/trace"
@@ -161,7 +162,7 @@ func joined(with string, parts ...string) string {
 }
 
 // Notes returns what the user should know that is no error.
-func (s *Sheet) Notes() []string {
+func (s *Sheet) Notes(in *words.Words) []string {
 	var notes []string
 	between := 0
 	for i := range s.Rows {
@@ -172,16 +173,16 @@ func (s *Sheet) Notes() []string {
 			}
 		}
 		if len(r.Step.New) == 0 {
-			notes = append(notes, fmt.Sprintf("tier %s takes nothing off the rough that the steps start from", r.Tier.Name))
+			notes = append(notes, in.Say("tier %s takes nothing off the rough that the steps start from", r.Tier.Name))
 		}
 	}
 	if between > 0 {
-		notes = append(notes, fmt.Sprintf("%d facets lie between the teeth of the gear of %d; "+
+		notes = append(notes, in.Say("%d facets lie between the teeth of the gear of %d; "+
 			"the sheet gives tooth and cheater", between, s.Machine.Gear))
 	}
 	if s.Rough.TooSmall {
-		notes = append(notes, "the plan's rough does not hold the stone along its axes; "+
-			"the steps start from a box around the stone")
+		notes = append(notes, in.Say("the plan's rough does not hold the stone along its axes; "+
+			"the steps start from a box around the stone"))
 	}
 	return notes
 }

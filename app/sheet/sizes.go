@@ -128,7 +128,7 @@ func (s *Sheet) Checks(side facets.Side) []string {
 	if len(names) == 0 {
 		return nil
 	}
-	all := fmt.Sprintf("All %d facets of %s are cut", count, listed(names))
+	all := fmt.Sprintf("All %d facets of %s are cut", count, listed(nil, names))
 	if count == 1 {
 		all = names[0] + " is cut"
 	}

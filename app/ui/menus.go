@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"io/fs"
 	"path/filepath"
-	"strings"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/driver/desktop"
@@ -147,7 +146,13 @@ func (w *window) refreshMenu() {
 	}
 	undoStep, canUndo := w.bench.Doc.UndoName()
 	redoStep, canRedo := w.bench.Doc.RedoName()
-	undo, redo := w.words.Say("Undo %s", undoStep), w.words.Say("Redo %s", redoStep)
+	undo, redo := w.words.Say("Undo"), w.words.Say("Redo")
+	if canUndo {
+		undo = w.words.Say("Undo %s", undoStep)
+	}
+	if canRedo {
+		redo = w.words.Say("Redo %s", redoStep)
+	}
 	wide := w.win.Canvas().Size().Width
 	plan, stone := w.panes.shown(wide)
 	recent := w.files.recent()
@@ -157,8 +162,8 @@ func (w *window) refreshMenu() {
 		return
 	}
 	m.shown = shown
-	m.undo.Label, m.undo.Disabled = strings.TrimSpace(undo), !canUndo
-	m.redo.Label, m.redo.Disabled = strings.TrimSpace(redo), !canRedo
+	m.undo.Label, m.undo.Disabled = undo, !canUndo
+	m.redo.Label, m.redo.Disabled = redo, !canRedo
 	for _, i := range m.tier {
 		i.Disabled = !picked && i.Label != w.words.Say("New tier…")
 	}
