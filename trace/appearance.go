@@ -84,12 +84,12 @@ func Appear(ctx context.Context, scene Scene, settings Settings, distance float6
 		a := &all[k]
 		a.Surrounding, a.Light, a.Distance, a.Pixels = scene.Surroundings[k], settings.Light, distance, settings.Pixels
 		first, second := looks[0][k], looks[1][k]
-		seen, err := LookAt(pictures(first), first[0].inside, distance)
+		seen, err := LookAt(pictures(first), first[0].grid.insidePixels(), distance)
 		if err != nil {
 			return nil, err
 		}
 		a.Luminance, a.DarkArea, a.Contrast, a.Fire = seen.Luminance(), seen.DarkArea(), seen.Contrast(), seen.Fire()
-		if a.Sparkle, err = Sparkle(pictures(first), pictures(second), first[0].inside, second[0].inside, distance); err != nil {
+		if a.Sparkle, err = Sparkle(pictures(first), pictures(second), first[0].grid.insidePixels(), second[0].grid.insidePixels(), distance); err != nil {
 			return nil, err
 		}
 		a.XYZ = joined(first).XYZ()
@@ -114,12 +114,15 @@ func (s Scene) square(settings Settings) (float64, error) {
 
 // picture returns the map's colours as the measures of an eye take them.
 func (m *Map) picture() *Picture {
-	p := &Picture{Pixels: m.Pixels, Pitch: m.Span / float64(m.Pixels), Sum: make([][3]float64, len(m.colour)), Rays: make([]int32, len(m.cells))}
-	for i := range m.colour {
-		for c, v := range m.colour[i] {
-			p.Sum[i][c] = float64(v)
+	n := len(m.grid.cell)
+	p := &Picture{Pixels: m.Pixels, Pitch: m.Span / float64(m.Pixels), Sum: make([][3]float64, n), Rays: make([]int32, n)}
+	for i, at := range m.grid.cell {
+		// Where a mirror line runs through a pixel each ray stands for two or more.
+		times := int32(m.grid.folds) / m.grid.shared[at]
+		for c, v := range m.colour[at] {
+			p.Sum[i][c] = float64(v) * float64(times)
 		}
-		p.Rays[i] = m.cells[i].rays
+		p.Rays[i] = m.cells[at].rays * times
 	}
 	return p
 }

@@ -147,7 +147,7 @@ func BenchmarkPicture(b *testing.B) {
 		for i, v := range m.Field(Returned) {
 			sum[i] += v
 		}
-		return sum, m.inside
+		return sum, m.grid.insidePixels()
 	}
 	want, inside := above(2000, 99)
 	for _, samples := range []int{4, 8, 16, 32, 64} {
@@ -198,7 +198,7 @@ func BenchmarkMaps(b *testing.B) {
 			for k, c := range got.Columns {
 				se = max(se, c.StandardError.Max())
 				for _, q := range []Quantity{Returned, Leaked} {
-					worst = max(worst, rms(c.Map.Field(q), want.Columns[k].Map.Field(q), c.Map.inside))
+					worst = max(worst, rms(c.Map.Field(q), want.Columns[k].Map.Field(q), c.Map.grid.insidePixels()))
 				}
 			}
 			b.ReportMetric(worst, "rms")

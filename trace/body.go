@@ -3,6 +3,7 @@ package trace
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"pavilight/facets"
 )
@@ -67,35 +68,72 @@ func newBody(s *facets.Stone) (*body, error) {
 // mapDirections builds the map by direction. Directions are laid on two squares,
 // u = x/s and v = y/s with s = |x|+|y|+|z|, one for each sign of z; the stone's
 // directions fill the diamond |u|+|v| <= 1 of each. Within one octant the point
-// (u, v, ±(1-|u|-|v|)) lies on a plane, so each row's value there is linear.
+// (u, v, ±(1-|u|-|v|)) lies on a plane, so each row's value there is linear. Where the
+// stone is its own mirror image, so are octants.
 func (b *body) mapDirections() {
 	b.byDirection = newCells(2 * directions * directions)
+	acrossX := b.mirrored(vec{-1, 1, 1})
+	acrossY := b.mirrored(vec{1, -1, 1})
 	fs := make([]plane2, len(b.rows))
-	const half = directions / 2
-	octant := region{step: 1.0 / half, side: half}
-	// One cell more than the diamond needs, for look-ups that round across its rim.
-	octant.outside = func(u, v, size float64) bool { return u+v > 1+1.0/half }
 	for i := range 8 {
-		sx, sy, sz := 1-2*(i&1), 1-i&2, 1-i>>1&2
+		o := octant(i)
+		switch {
+		case i&1 != 0 && acrossX != nil:
+			b.byDirection.copy(o, octant(i&^1), acrossX)
+			continue
+		case i&2 != 0 && acrossY != nil:
+			b.byDirection.copy(o, octant(i&^2), acrossY)
+			continue
+		}
 		for j, m := range b.rows {
 			// In |u| and |v|, both growing away from the middle of the square.
+			sx, sy, sz := octantSigns(i)
 			z := float64(sz) * m.z
 			fs[j] = plane2{z, float64(sx)*m.x - z, float64(sy)*m.y - z}
 		}
-		// Cell (0, 0) of the octant touches the middle of its half of the map.
-		first := half*directions + half
-		if sx < 0 {
-			first--
-		}
-		if sy < 0 {
-			first -= directions
-		}
-		if sz < 0 {
-			first += directions * directions
-		}
-		octant.cell = func(column, row int) int { return first + sy*row*directions + sx*column }
-		b.byDirection.fill(fs, &octant)
+		b.byDirection.fill(fs, o)
 	}
+}
+
+// octantSigns returns the signs of x, y and z in an octant.
+func octantSigns(i int) (sx, sy, sz int) { return 1 - 2*(i&1), 1 - i&2, 1 - i>>1&2 }
+
+// octant returns that part of the map by direction.
+func octant(i int) *region {
+	const half = directions / 2
+	sx, sy, sz := octantSigns(i)
+	// Its first cell touches the middle of its half of the map.
+	o := &region{step: 1.0 / half, side: half, first: half*directions + half, right: sx, up: sy * directions}
+	if sx < 0 {
+		o.first--
+	}
+	if sy < 0 {
+		o.first -= directions
+	}
+	if sz < 0 {
+		o.first += directions * directions
+	}
+	// One cell more than the diamond needs, for look-ups that round across its rim.
+	o.outside = func(u, v, size float64) bool { return u+v > 1+1.0/half }
+	return o
+}
+
+// mirrored returns for each row which is its mirror image; nil if one has none. What
+// solving a plan rounds off does not count.
+func (b *body) mirrored(signs vec) []uint16 {
+	const same = 1e-12
+	images := make([]uint16, len(b.rows))
+	for j, m := range b.rows {
+		image := vec{signs.x * m.x, signs.y * m.y, signs.z * m.z}
+		k := slices.IndexFunc(b.rows, func(r vec) bool {
+			return math.Abs(r.x-image.x) < same && math.Abs(r.y-image.y) < same && math.Abs(r.z-image.z) < same
+		})
+		if k < 0 {
+			return nil
+		}
+		images[j] = uint16(k)
+	}
+	return images
 }
 
 // largest returns the row that is largest at y and its value there: the gauge.

@@ -39,16 +39,13 @@ func newCells(n int) cells {
 type region struct {
 	u, v, step float64
 	side       int
-	cell       func(column, row int) int     // the number of one of its cells
+	first      int                           // the number of its first cell
+	right, up  int                           // how much larger that of the next is, along u and along v
 	outside    func(u, v, size float64) bool // whether a part of it is not wanted; nil if all is
 	margin     float64                       // by how much a function must be larger to count as larger
 	stack      []uint16                      // lists of the quarters being worked on
-	survivors  []rise                        // scratch
+	survivors  []corners                     // scratch
 }
-
-// rise is a function over a square: its value at the first corner, and how much it rises
-// to the next along u and v.
-type rise struct{ at, du, dv float64 }
 
 // fill names, for each cell of the square, the functions that can be largest. The
 // square is quartered from the whole list down: a function is dropped where another
@@ -78,14 +75,17 @@ func (c *cells) quarter(fs []plane2, sq *region, list []uint16, column, row, n i
 		sq.stack = appendLargest(sq.stack, fs, list, sq, u, v, w)
 		list = sq.stack[mark:]
 	}
-	if len(list) == 1 || n == 1 {
+	switch {
+	case len(list) == 1 || n == 1:
 		number := c.store(fs, list, u+w/2, v+w/2)
 		for r := row; r < row+n; r++ {
 			for k := column; k < column+n; k++ {
 				c.list[sq.cell(k, r)] = number
 			}
 		}
-	} else {
+	case len(list) == 2 || len(list) <= few && n <= scanned:
+		c.scan(fs, sq, list, column, row, n)
+	default:
 		h := n / 2
 		c.quarter(fs, sq, list, column, row, h)
 		c.quarter(fs, sq, list, column+h, row, h)
@@ -95,6 +95,93 @@ func (c *cells) quarter(fs []plane2, sq *region, list []uint16, column, row, n i
 	sq.stack = sq.stack[:mark]
 }
 
+// copy fills a part of the map with the lists of another, in which each function stands
+// for one of images.
+func (c *cells) copy(to, from *region, images []uint16) {
+	numbers := make([]uint16, len(c.spans)) // of the new lists, by those of the old; 0 where unknown
+	for row := range from.side {
+		for column := range from.side {
+			old := c.list[from.cell(column, row)]
+			if old != 0 && numbers[old] == 0 {
+				var list []uint16
+				span := c.spans[old]
+				for _, j := range c.names[span.first : span.first+span.n] {
+					list = append(list, images[j])
+				}
+				numbers[old] = c.number(list)
+			}
+			c.list[to.cell(column, row)] = numbers[old]
+		}
+	}
+}
+
+// few is how many functions scan takes at most, and scanned in how many cells across if
+// there are more than two: so that building takes the least time.
+const (
+	few     = 4
+	scanned = 4
+)
+
+// scan fills n x n cells of which it is known that one of a few functions is the largest.
+// It does what quarter does, cell by cell: for so few that is quicker.
+func (c *cells) scan(fs []plane2, sq *region, list []uint16, column, row, n int) {
+	// A function is out where another's lead in the middle of the cell is more than it can
+	// lose on the way to a corner.
+	var f [few]plane2
+	for i, j := range list {
+		f[i] = fs[j]
+	}
+	var lost [few][few]float64
+	for i := range list {
+		for j := range list {
+			lost[i][j] = sq.margin + (math.Abs(f[i].b-f[j].b)+math.Abs(f[i].c-f[j].c))*sq.step/2
+		}
+	}
+	var numbers [1 << few][few]uint16 // of the lists, by which are in and which comes first; one too high
+	for r := row; r < row+n; r++ {
+		v := sq.v + (float64(r)+0.5)*sq.step
+		for k := column; k < column+n; k++ {
+			u := sq.u + (float64(k)+0.5)*sq.step
+			var at [few]float64
+			first := 0
+			for i := range list {
+				if at[i] = f[i].at(u, v); at[i] > at[first] {
+					first = i
+				}
+			}
+			in := 1 << first
+			for i := range list {
+				beaten := false
+				for j := range list {
+					beaten = beaten || at[j]-at[i] > lost[i][j]
+				}
+				if !beaten {
+					in |= 1 << i
+				}
+			}
+			number := &numbers[in][first]
+			if *number == 0 {
+				*number = c.number(pick(list, in, first)) + 1
+			}
+			c.list[sq.cell(k, r)] = *number - 1
+		}
+	}
+}
+
+// pick returns those of list whose bits are set in in, the first of them first.
+func pick(list []uint16, in, first int) []uint16 {
+	picked := []uint16{list[first]}
+	for i, j := range list {
+		if i != first && in>>i&1 != 0 {
+			picked = append(picked, j)
+		}
+	}
+	return picked
+}
+
+// cell returns the number of one of its cells.
+func (r *region) cell(column, row int) int { return r.first + column*r.right + row*r.up }
+
 // appendLargest appends to to those of list that can be the largest in the square of
 // size w at (u, v).
 func appendLargest(to []uint16, fs []plane2, list []uint16, sq *region, u, v, w float64) []uint16 {
@@ -103,26 +190,29 @@ func appendLargest(to []uint16, fs []plane2, list []uint16, sq *region, u, v, w 
 	sq.survivors = sq.survivors[:0]
 	for _, j := range list {
 		f := &fs[j]
-		s := rise{f.at(u, v), f.b * w, f.c * w}
-		floor = max(floor, s.at+min(0, s.du)+min(0, s.dv))
+		at, du, dv := f.at(u, v), f.b*w, f.c*w
+		s := corners{at, at + du, at + dv, at + du + dv}
+		if l := s.least(); l > floor {
+			floor = l
+		}
 		sq.survivors = append(sq.survivors, s)
 	}
 	floor -= sq.margin
 	mark, n := len(to), 0
 	var champion [4]int // who is largest at each corner
-	best := [4]float64{floor, floor, floor, floor}
+	best := corners{floor, floor, floor, floor}
 	for i, j := range list {
-		s := sq.survivors[i]
-		if s.at+max(0, s.du)+max(0, s.dv) < floor {
+		s := &sq.survivors[i]
+		if s.below(floor) {
 			continue
 		}
-		for k, g := range [4]float64{s.at, s.at + s.du, s.at + s.dv, s.at + s.du + s.dv} {
+		for k, g := range s {
 			if g > best[k] {
 				best[k], champion[k] = g, n
 			}
 		}
 		to = append(to, j)
-		sq.survivors[n] = s
+		sq.survivors[n] = *s
 		n++
 	}
 	sq.survivors = sq.survivors[:n]
@@ -131,11 +221,11 @@ func appendLargest(to []uint16, fs []plane2, list []uint16, sq *region, u, v, w 
 	for i := range sq.survivors {
 		s := &sq.survivors[i]
 		beaten := false
-		for _, k := range champion {
-			c := &sq.survivors[k]
-			// The least lead of the champion over the square, from its corner's and its slopes'.
-			lead := c.at - s.at + min(0, c.du-s.du) + min(0, c.dv-s.dv)
-			beaten = beaten || k != i && lead > sq.margin
+		for k, c := range champion {
+			if k > 0 && c == champion[k-1] || c == i {
+				continue
+			}
+			beaten = beaten || s.beaten(&sq.survivors[c], sq.margin)
 		}
 		if !beaten {
 			to[kept] = to[mark+i]
@@ -143,6 +233,31 @@ func appendLargest(to []uint16, fs []plane2, list []uint16, sq *region, u, v, w 
 		}
 	}
 	return to[:kept]
+}
+
+// corners is the values of a linear function at the corners of a square.
+type corners [4]float64
+
+// least is the least value in the square. (The comparisons here are plain ones: max and
+// min have more to care about, and this is where a map's time goes.)
+func (s *corners) least() float64 {
+	l := s[0]
+	for _, v := range s[1:] {
+		if v < l {
+			l = v
+		}
+	}
+	return l
+}
+
+// below reports whether the function is below a level everywhere.
+func (s *corners) below(level float64) bool {
+	return s[0] < level && s[1] < level && s[2] < level && s[3] < level
+}
+
+// beaten reports whether another function is larger everywhere.
+func (s *corners) beaten(by *corners, margin float64) bool {
+	return by[0]-s[0] > margin && by[1]-s[1] > margin && by[2]-s[2] > margin && by[3]-s[3] > margin
 }
 
 // store keeps a list for a cell whose middle is (u, v) and returns its number.
@@ -154,6 +269,11 @@ func (c *cells) store(fs []plane2, list []uint16, u, v float64) uint16 {
 		}
 	}
 	list[0], list[first] = list[first], list[0]
+	return c.number(list)
+}
+
+// number keeps a list as it is and returns its number.
+func (c *cells) number(list []uint16) uint16 {
 	var key [3]uint16
 	if len(list) <= len(key) {
 		for i, j := range list {

@@ -155,7 +155,7 @@ var themes = []struct{ file, title string }{
 }
 
 // unlisted are the files whose comparisons are of one form of the code with another.
-var unlisted = []string{"kernel_test.go", "symmetry_test.go"}
+var unlisted = []string{"grid_test.go", "kernel_test.go", "symmetry_test.go"}
 
 // TestMain writes the page, or fails where it is stale, after a run of all tests.
 func TestMain(m *testing.M) {

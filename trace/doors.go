@@ -103,8 +103,9 @@ func (r *run) doors(t *traveller, scrambling int) (shares []share, rays float64)
 	shares = make([]share, len(r.scene.Stone.Facets))
 	points := r.points[scrambling]
 	var at lambda
+	var s scratch
 	for i := range uint32(doorRays) {
-		e, _, _, ok := r.enter(points, i)
+		e, _, _, ok := r.enter(points, i, &s)
 		if !ok {
 			continue
 		}

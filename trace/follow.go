@@ -12,8 +12,16 @@ import (
 
 // faintShare is the share of a viewing ray below which its path is not split any
 // more: it takes the whole exit or the whole reflection, with probabilities T and
-// R. That is unbiased and keeps the ledger's sum.
-const faintShare = 1e-4
+// R. That is unbiased and keeps the ledger's sum. What it adds to the noise of a ray is
+// of the size of the share, well below what the place of the ray in its pixel does
+// (TestFaintPathsAddNoNoise), and it halves the way.
+//
+// A light may be hundreds of times as bright in a few places as on the whole. There
+// what is faint is seen, and faintInLight holds.
+const (
+	faintShare   = 1e-2
+	faintInLight = 1e-4
+)
 
 // mostBounces ends a path that will not leave; what it carries is unresolved. A
 // path that is totally reflected for ever must be ended, and only such a path
@@ -26,7 +34,7 @@ type tracer struct {
 	outline *outline
 	toEye   []float64 // cosine between each facet's normal and the eye's direction
 	headCos float64   // light that leaves closer to the eye than this comes from the head
-	faint   float64   // faintShare, but where tests compare whole paths
+	faint   float64   // see faintShare; less where tests compare whole paths
 
 	averaged bool    // the two polarisations are averaged at every facet
 	light    *Light  // nil for the even light
@@ -44,6 +52,9 @@ func newTracer(s *facets.Stone, settings Settings) (*tracer, error) {
 	}
 	t := &tracer{body: b, headCos: 2, faint: faintShare, averaged: settings.Averaged, bins: newAngleBins(),
 		light: settings.Light, below: settings.Below}
+	if settings.Light != nil {
+		t.faint = faintInLight
+	}
 	if settings.Head > 0 {
 		t.headCos = math.Cos(settings.Head.Radians())
 	}
@@ -81,19 +92,6 @@ func (t *tracer) arrive(u, v float64) (facet int, x, d vec, ok bool) {
 	d = d.scale(1 / d.length())
 	facet, s, ok := t.body.entry(t.eyeAt, d)
 	return facet, t.eyeAt.plus(s, d), d, ok
-}
-
-// mask tells for each pixel of a picture of the outline's square, row by row from
-// the top left, whether its middle shows the stone.
-func (t *tracer) mask(pixels int) []bool {
-	inside := make([]bool, pixels*pixels)
-	step := 2 * t.outline.half / float64(pixels)
-	for row := range pixels {
-		for col := range pixels {
-			_, _, _, inside[row*pixels+col] = t.arrive((float64(col)+0.5)*step-t.outline.half, t.outline.half-(float64(row)+0.5)*step)
-		}
-	}
-	return inside
 }
 
 // follow sends one unit of viewing ray into the stone through a facet at x and

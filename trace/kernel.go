@@ -38,9 +38,6 @@ func (t *tracer) followAll(rays []ray, out []Ledger, lit []float64, columns []su
 		}
 	}
 	for i := range out {
-		var one sums
-		one.addLedger(out[i])
-		one[rayCount] = 1
-		columns[rays[i].column].addWeighted(rays[i].weight, &one)
+		columns[rays[i].column].addRay(rays[i].weight, &out[i])
 	}
 }

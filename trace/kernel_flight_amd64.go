@@ -83,6 +83,8 @@ type errand struct {
 	lit     []float64 // luminance seen by each; nil where none is wanted
 	columns []sums
 
+	entrances []entrance // by facet, the last
+
 	flight *flight
 	bins   []eyeBins       // by column
 	ray    [inFlight]int32 // number of the ray in each place
@@ -94,7 +96,8 @@ type errand struct {
 func (k *kernel) follow(rays []ray, out []Ledger, lit []float64, columns []sums) {
 	e := &errand{
 		kernel: k, rays: rays, out: out, lit: lit, columns: columns,
-		flight: k.newFlight(), bins: make([]eyeBins, len(columns)),
+		entrances: make([]entrance, len(k.planes)),
+		flight:    k.newFlight(), bins: make([]eyeBins, len(columns)),
 	}
 	for e.live < inFlight && e.enter(e.live) {
 		e.live++
@@ -203,25 +206,21 @@ func (e *errand) enter(place int) bool {
 		e.ray[place] = int32(e.next)
 		e.next++
 
-		// Split at the first surface.
-		n := t.body.normal[r.facet]
-		cosI := -r.along.dot(n)
-		at := Fresnel(r.m, r.n, cosI)
-		*l = Ledger{Surface: at.Mean()}
+		in := e.entrance(r)
+		surface := in.at.Mean()
+		*l = Ledger{Surface: surface}
 		sums := &e.columns[r.column]
-		mirrored := r.along.plus(2*cosI, n)
 		if e.lit == nil {
-			t.litSurface(mirrored.dot(t.outline.eye), l.Surface, sums)
+			t.litSurface(in.mirrored.dot(t.outline.eye), surface, sums)
 		} else {
-			seen := l.Surface * t.seen(mirrored, r.wavelength)
+			seen := surface * t.seen(in.mirrored, r.wavelength)
 			e.lit[e.next-1] = seen
 			sums[litSurface] += r.weight * seen
 		}
-		if at.Total {
+		if in.at.Total {
 			continue
 		}
-		dir := refract(r.along, n.scale(-1), r.m/r.n, cosI, at.CosT)
-		light := enterBeam(at, dir, n)
+		dir, light := in.dir, &in.light
 
 		g, i := &e.flight.groups[place/8], place%8
 		g.x[i], g.y[i], g.z[i] = float32(r.at.x), float32(r.at.y), float32(r.at.z)
@@ -241,6 +240,33 @@ func (e *errand) enter(place int) bool {
 		return true
 	}
 	return false
+}
+
+// entrance is what the first surface does to a ray.
+type entrance struct {
+	n, m          float64 // of the ray, as its direction along
+	along         vec
+	at            Reflection
+	mirrored, dir vec  // where it goes, outside and in
+	light         beam // inside
+}
+
+// entrance returns what the first surface does to a ray. It remembers that of each facet:
+// at one wavelength all rays from afar fare alike there.
+func (e *errand) entrance(r *ray) *entrance {
+	in := &e.entrances[r.facet]
+	if in.n == r.n && in.m == r.m && in.along == r.along {
+		return in
+	}
+	n := e.tracer.body.normal[r.facet]
+	cosI := -r.along.dot(n)
+	at := Fresnel(r.m, r.n, cosI)
+	*in = entrance{n: r.n, m: r.m, along: r.along, at: at, mirrored: r.along.plus(2*cosI, n)}
+	if !at.Total {
+		in.dir = refract(r.along, n.scale(-1), r.m/r.n, cosI, at.CosT)
+		in.light = enterBeam(at, in.dir, n)
+	}
+	return in
 }
 
 // sphere is the radius of the sphere that Newton's method starts from: it holds the

@@ -11,10 +11,10 @@ import (
 type Map struct {
 	Pixels int          // of each edge
 	Span   float64      // mm across the whole picture
-	cells  []cell       // row by row
+	grid   *grid        // which cell keeps what fell into a pixel; shared
+	cells  []cell       // in the grid's order
 	colour [][3]float32 // sums of X, Y and Z likewise; nil where colour was not gathered
 	ways   []float32    // sums of way inside times power, mm; nil where they were not gathered
-	inside []bool       // the pixel's middle shows the stone; shared, never written again
 }
 
 // cell is what fell into one pixel: sums over its rays.
@@ -24,13 +24,14 @@ type cell struct {
 	rays   int32
 }
 
-func newMap(pixels int, span float64, inside []bool, colour, ways bool) *Map {
-	m := &Map{Pixels: pixels, Span: span, cells: make([]cell, pixels*pixels), inside: inside}
+func newMap(g *grid, span float64, colour, ways bool) *Map {
+	n := len(g.first)
+	m := &Map{Pixels: g.pixels, Span: span, grid: g, cells: make([]cell, n)}
 	if colour {
-		m.colour = make([][3]float32, pixels*pixels)
+		m.colour = make([][3]float32, n)
 	}
 	if ways {
-		m.ways = make([]float32, pixels*pixels)
+		m.ways = make([]float32, n)
 	}
 	return m
 }
@@ -41,8 +42,8 @@ func (m *Map) clone() *Map {
 	return &c
 }
 
-func (m *Map) add(pixel int, weight float64, l *Ledger) {
-	c := &m.cells[pixel]
+func (m *Map) add(at int32, weight float64, l *Ledger) {
+	c := &m.cells[at]
 	c.Surface += weight * l.Surface
 	c.Returned += weight * l.Returned
 	c.Head += weight * l.Head
@@ -53,19 +54,19 @@ func (m *Map) add(pixel int, weight float64, l *Ledger) {
 	c.rays++
 }
 
-func (m *Map) addColour(pixel int, radiance float64, xyz [3]float64) {
+func (m *Map) addColour(at int32, radiance float64, xyz [3]float64) {
 	for i := range xyz {
-		m.colour[pixel][i] += float32(radiance * xyz[i])
+		m.colour[at][i] += float32(radiance * xyz[i])
 	}
 }
 
 // addWay adds a way inside times the power and weight of its light, in mm.
-func (m *Map) addWay(pixel int, way float64) { m.ways[pixel] += float32(way) }
+func (m *Map) addWay(at int32, way float64) { m.ways[at] += float32(way) }
 
 // At returns the mean ledger of the rays that fell into the pixel and their
 // number, 0 outside the outline and where no ray fell yet.
 func (m *Map) At(x, y int) (Ledger, int) {
-	c := &m.cells[y*m.Pixels+x]
+	c := &m.cells[m.grid.cell[y*m.Pixels+x]]
 	if c.rays == 0 {
 		return Ledger{}, 0
 	}
@@ -76,8 +77,8 @@ func (m *Map) At(x, y int) (Ledger, int) {
 // Inside reports whether the pixel shows the stone: its middle lies within the
 // outline or a ray through it met the stone.
 func (m *Map) Inside(x, y int) bool {
-	i := y*m.Pixels + x
-	return m.inside[i] || m.cells[i].rays > 0
+	c := m.grid.cell[y*m.Pixels+x]
+	return m.grid.inside[c] || m.cells[c].rays > 0
 }
 
 // Field returns one quantity for every pixel, row by row from the top left. A
@@ -85,8 +86,8 @@ func (m *Map) Inside(x, y int) bool {
 // so a coarse run gives a coarse picture; outside the outline the field is NaN.
 func (m *Map) Field(q Quantity) []float32 {
 	return m.filled(
-		func(i int) float32 { return float32(q.Of(m.cells[i].Ledger)) },
-		func(i int) float32 { return float32(m.cells[i].weight) })
+		func(c int) float32 { return float32(q.Of(m.cells[c].Ledger)) },
+		func(c int) float32 { return float32(m.cells[c].weight) })
 }
 
 // XYZ returns the CIE 1931 tristimulus values of every pixel, in the order and with
@@ -96,11 +97,11 @@ func (m *Map) XYZ() [][3]float32 {
 	if m.colour == nil {
 		return nil
 	}
-	xyz := make([][3]float32, len(m.cells))
+	xyz := make([][3]float32, m.Pixels*m.Pixels)
 	for k := range 3 {
 		for i, v := range m.filled(
-			func(i int) float32 { return m.colour[i][k] },
-			func(i int) float32 { return float32(m.cells[i].rays) }) {
+			func(c int) float32 { return m.colour[c][k] },
+			func(c int) float32 { return float32(m.cells[c].rays) }) {
 			xyz[i][k] = v
 		}
 	}
@@ -116,25 +117,40 @@ func (m *Map) PathLengths() []float32 {
 		return nil
 	}
 	return m.filled(
-		func(i int) float32 { return m.ways[i] },
-		func(i int) float32 { c := &m.cells[i]; return float32(c.Returned + c.Head + c.Leaked) })
+		func(c int) float32 { return m.ways[c] },
+		func(c int) float32 { l := &m.cells[c]; return float32(l.Returned + l.Head + l.Leaked) })
 }
 
-// filled returns sum over weight of every pixel.
-func (m *Map) filled(sum, weight func(pixel int) float32) []float32 {
-	base := layer{m.Pixels, make([]float32, len(m.cells)), make([]float32, len(m.cells))}
-	for i := range m.cells {
-		base.sum[i], base.weight[i] = sum(i), weight(i)
-	}
-	base.fillFromCoarser()
-	for i := range base.sum {
-		if !m.inside[i] && m.cells[i].rays == 0 {
-			base.sum[i] = float32(math.NaN())
+// filled returns sum over weight of every pixel; both are of a cell.
+func (m *Map) filled(sum, weight func(cell int) float32) []float32 {
+	mean, gaps := make([]float32, len(m.cells)), false
+	for c := range m.cells {
+		if !m.grid.inside[c] && m.cells[c].rays == 0 {
+			mean[c] = float32(math.NaN())
+			continue
+		}
+		if w := weight(c); w != 0 {
+			mean[c] = sum(c) / w
 		} else {
-			base.sum[i] /= base.weight[i]
+			gaps = true
 		}
 	}
-	return base.sum
+	var base layer
+	if gaps {
+		base = layer{m.Pixels, make([]float32, len(m.grid.cell)), make([]float32, len(m.grid.cell))}
+		for i, c := range m.grid.cell {
+			base.sum[i], base.weight[i] = sum(int(c)), weight(int(c))
+		}
+		base.fillFromCoarser()
+	}
+	field := make([]float32, len(m.grid.cell))
+	for i, c := range m.grid.cell {
+		field[i] = mean[c]
+		if gaps && weight(int(c)) == 0 && m.grid.inside[c] {
+			field[i] = base.sum[i] / base.weight[i]
+		}
+	}
+	return field
 }
 
 // layer is one level of a pyramid: sums and the weights of their rays, so that a mean

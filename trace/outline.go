@@ -18,7 +18,7 @@ type outline struct {
 }
 
 // looks is how many cells the maps by place have across; a power of two.
-const looks = 64
+const looks = 32
 
 // newOutline projects the body along the eye's direction. corners are the body's
 // own, relative to its middle. square, above 0, is the edge of another square for the
@@ -57,8 +57,7 @@ func newOutline(b *body, f frame, corners []vec, square float64) *outline {
 			o.facet[1] = append(o.facet[1], j)
 		}
 	}
-	whole := region{u: -o.half, v: -o.half, step: 2 * o.half / looks, side: looks}
-	whole.cell = func(column, row int) int { return row*looks + column }
+	whole := region{u: -o.half, v: -o.half, step: 2 * o.half / looks, side: looks, right: 1, up: looks}
 	for _, side := range []struct {
 		cells *cells
 		fs    []plane2

@@ -33,7 +33,7 @@ type Column struct {
 	WindowedError float64           // its standard error
 	PathLength    float64           // mm inside the stone, the mean of the light that leaves it; 0 where it was not asked for
 	Segments      int64             // facet hits inside the stone
-	Map           *Map
+	Map           *Map              // nil in what is reported before the end if Settings.MapsLast
 }
 
 // Lit is the luminance under the settings' light, relative to a white diffuser that lies

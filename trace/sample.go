@@ -22,13 +22,18 @@ func newPoints(seed uint64, r int) points {
 	return points{[3]uint32{uint32(k), uint32(k >> 32), uint32(mix(k))}}
 }
 
-// at returns point i, each coordinate in [0, 1).
-func (p points) at(i uint32) (x, y, z float64) {
-	const unit = 1.0 / (1 << 32)
-	return float64(scramble(bits.Reverse32(i), p.key[0])) * unit,
-		float64(scramble(sobol(i, &direction2), p.key[1])) * unit,
-		float64(scramble(sobol(i, &direction3), p.key[2])) * unit
+// place returns the place of point i in the picture, and wavelength that in the
+// spectrum; each coordinate is in [0, 1).
+func (p points) place(i uint32) (x, y float64) {
+	return float64(scramble(bits.Reverse32(i), p.key[0])) * unit32,
+		float64(scramble(sobol(i, &direction2), p.key[1])) * unit32
 }
+
+func (p points) wavelength(i uint32) float64 {
+	return float64(scramble(sobol(i, &direction3), p.key[2])) * unit32
+}
+
+const unit32 = 1.0 / (1 << 32)
 
 // direction2 and direction3 are the direction numbers of the second and third
 // dimension of the sequence (the first is bit reversal): primitive polynomials

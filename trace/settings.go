@@ -30,6 +30,7 @@ type Settings struct {
 	Square     float64         // mm; edge of the picture about the stone's middle, so that views share it; 0 for the outline's own
 	Samples    int             // mean rays per pixel at which tracing stops; 0 means until Error is reached
 	Error      float64         // stop when the standard error of every ledger entry is below; 0 means 0.0005
+	MapsLast   bool            // what is reported before the end has no maps: where only the progress is of interest
 	Seed       uint64          // same seed, same result, for any number of workers
 	Workers    int             // goroutines that trace; 0 means all cores
 

@@ -33,6 +33,17 @@ func (s *sums) addLedger(l Ledger) {
 	s[Unresolved] += l.Unresolved
 }
 
+// addRay adds the ledger of one ray of a weight.
+func (s *sums) addRay(weight float64, l *Ledger) {
+	s[Surface] += weight * l.Surface
+	s[Returned] += weight * l.Returned
+	s[Head] += weight * l.Head
+	s[Leaked] += weight * l.Leaked
+	s[Absorbed] += weight * l.Absorbed
+	s[Unresolved] += weight * l.Unresolved
+	s[rayCount] += weight
+}
+
 func (s *sums) add(o *sums) {
 	for i := range s {
 		s[i] += o[i]

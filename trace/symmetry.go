@@ -33,12 +33,18 @@ func (s *symmetry) place(x, y float64) (u, v float64) {
 	return s.middle[0] + r*cos, s.middle[1] + r*sin
 }
 
+// area is that of the sector.
+func (s *symmetry) area() float64 { return math.Pi * s.reach * s.reach / float64(len(s.images)) }
+
 // image returns image number i of the point (u, v) of the picture; number 0 is itself.
 func (s *symmetry) image(u, v float64, i int) (float64, float64) {
 	u, v = u-s.middle[0], v-s.middle[1]
 	m := &s.images[i]
 	return s.middle[0] + m[0]*u + m[1]*v, s.middle[1] + m[2]*u + m[3]*v
 }
+
+// noSymmetry is that of a stone that looks different from every side.
+func noSymmetry() symmetry { return symmetry{images: [][4]float64{{1, 0, 0, 1}}} }
 
 // findImages lists the images.
 func (s *symmetry) findImages() {

@@ -162,6 +162,7 @@ func (l *lookCommand) Run(c call) error {
 		Error:      l.Error,
 		Seed:       l.Seed,
 		Workers:    l.Workers,
+		MapsLast:   true,
 	}
 	var folder *outFolder
 	if l.Out != "" { // a folder that cannot be written is told before the work, not after it

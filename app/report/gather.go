@@ -79,7 +79,7 @@ const (
 
 // usual settings of every run.
 func (j *Job) settings() trace.Settings {
-	s := trace.Settings{Head: j.Head, Pixels: j.Pixels, Error: j.Error, Seed: j.Seed, Workers: j.Workers}
+	s := trace.Settings{Head: j.Head, Pixels: j.Pixels, Error: j.Error, Seed: j.Seed, Workers: j.Workers, MapsLast: true}
 	if s.Pixels == 0 {
 		s.Pixels = 300
 	}

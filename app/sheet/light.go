@@ -39,7 +39,7 @@ func Trace(ctx context.Context, job *Job, media []*gems.Material, report func(do
 		return err
 	}
 	settings := trace.Settings{
-		Head: facets.Angle(job.HeadDeg) * facets.Degree, Pixels: lightPixels, Error: lightError, Seed: 1, Workers: job.Workers,
+		Head: facets.Angle(job.HeadDeg) * facets.Degree, Pixels: lightPixels, Error: lightError, Seed: 1, Workers: job.Workers, MapsLast: true,
 	}
 	scene := trace.Scene{Stone: stone, Material: job.Material, Surroundings: trace.Around(media...)}
 	wrong := miscutPlans(job.Plan)
