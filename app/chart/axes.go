@@ -5,6 +5,7 @@ import (
 	"strconv"
 
 	"pavilight/app/drawing"
+	"pavilight/app/words"
 	"pavilight/trace/tune"
 )
 
@@ -24,6 +25,7 @@ type box struct {
 	at   drawing.Point // upper left corner
 	edge float64       // mm
 	x, y axis
+	in   *words.Words // the language of what is written
 }
 
 func (b *box) place(x, y float64) drawing.Point {
@@ -60,27 +62,29 @@ func (b *box) axes(p *drawing.Page, x, y tune.Variable) {
 	for _, v := range Levels(b.x.low, b.x.high, ticks) {
 		at := drawing.Point{X: b.at.X + b.edge*b.x.share(v), Y: b.at.Y + b.edge}
 		p.Line(drawing.Style{Stroke: black, Width: 0.2}, at, drawing.Point{X: at.X, Y: at.Y + 1})
-		p.Write(smallType, black, drawing.Middle, drawing.Point{X: at.X, Y: at.Y + 1.6 + smallType.Height()}, number(v))
+		p.Write(smallType, black, drawing.Middle, drawing.Point{X: at.X, Y: at.Y + 1.6 + smallType.Height()}, number(b.in, v))
 	}
 	for _, v := range Levels(b.y.low, b.y.high, ticks) {
 		at := drawing.Point{X: b.at.X, Y: b.at.Y + b.edge*(1-b.y.share(v))}
 		p.Line(drawing.Style{Stroke: black, Width: 0.2}, at, drawing.Point{X: at.X - 1, Y: at.Y})
-		p.Write(smallType, black, drawing.Right, drawing.Point{X: at.X - 1.6, Y: at.Y + smallType.Height()/2 - 0.3}, number(v))
+		p.Write(smallType, black, drawing.Right, drawing.Point{X: at.X - 1.6, Y: at.Y + smallType.Height()/2 - 0.3}, number(b.in, v))
 	}
-	p.Write(bodyType, black, drawing.Middle, drawing.Point{X: b.at.X + b.edge/2, Y: b.at.Y + b.edge + 4.5 + bodyType.Height()}, named(x))
-	p.Write(bodyType, black, drawing.Left, drawing.Point{X: b.at.X - chartLeft, Y: b.at.Y - 1.5}, named(y))
+	p.Write(bodyType, black, drawing.Middle, drawing.Point{X: b.at.X + b.edge/2, Y: b.at.Y + b.edge + 4.5 + bodyType.Height()}, named(b.in, x))
+	p.Write(bodyType, black, drawing.Left, drawing.Point{X: b.at.X - chartLeft, Y: b.at.Y - 1.5}, named(b.in, y))
 }
 
 // named is a variable's name with its unit.
-func named(v tune.Variable) string {
+func named(in *words.Words, v tune.Variable) string {
 	if v.Unit == "" {
 		return v.Name
 	}
-	return v.Name + ", " + v.Unit
+	return v.Name + ", " + in.Among([]words.Key{"degrees"}, v.Unit)
 }
 
 // number writes a number in as few digits as a tick needs.
-func number(v float64) string { return strconv.FormatFloat(v, 'f', -1, 64) }
+func number(in *words.Words, v float64) string {
+	return in.Decimal(strconv.FormatFloat(v, 'f', -1, 64))
+}
 
 // Levels returns round numbers from low to high, at most so many and about half as many
 // or more: multiples of 1, 2 or 5 times a power of ten.

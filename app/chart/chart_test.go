@@ -136,7 +136,7 @@ func TestFrontAndSpread(t *testing.T) {
 	inside(t, Front(&tune.Front{Points: f.Points[:1]}, FrontChart{}))
 
 	values := []float64{0.7, 0.71, 0.69, 0.7, 0.72, 0.7}
-	page = Spread("Errors", []string{"six stones"}, "light return", values, tune.Spread{Plan: 0.715, Low: 0.692, Median: 0.7, High: 0.718})
+	page = Spread(nil, "Errors", []string{"six stones"}, "light return", values, tune.Spread{Plan: 0.715, Low: 0.692, Median: 0.7, High: 0.718})
 	inside(t, page)
 	tall := 0.0
 	for _, m := range page.Marks {
@@ -147,6 +147,6 @@ func TestFrontAndSpread(t *testing.T) {
 	if math.Abs(tall-60) > 1e-9 {
 		t.Errorf("the tallest bar is %g mm, want 60", tall)
 	}
-	inside(t, Spread("", nil, "", nil, tune.Spread{}))
-	inside(t, Spread("", nil, "", []float64{1, 1}, tune.Spread{Plan: 1, Low: 1, Median: 1, High: 1}))
+	inside(t, Spread(nil, "", nil, "", nil, tune.Spread{}))
+	inside(t, Spread(nil, "", nil, "", []float64{1, 1}, tune.Spread{Plan: 1, Low: 1, Median: 1, High: 1}))
 }

@@ -10,6 +10,7 @@ import (
 
 	"pavilight/app/drawing"
 	"pavilight/app/picture"
+	"pavilight/app/words"
 	"pavilight/trace/tune"
 )
 
@@ -22,10 +23,11 @@ type Point struct {
 // FieldChart says what a chart of a field shows beside the field.
 type FieldChart struct {
 	Title  string
-	Lines  []string // under the title: stone, surroundings, goal
-	Goal   string   // what the score is, beside the scale
-	Points []Point  // further places, numbered and named under the chart
-	Edge   float64  // of the square, mm; 0 means 120. Smaller ones leave the words larger on a small screen
+	Lines  []string     // under the title: stone, surroundings, goal
+	Goal   string       // what the score is, beside the scale
+	Points []Point      // further places, numbered and named under the chart
+	In     *words.Words // the language of what the chart itself writes; nil for English
+	Edge   float64      // of the square, mm; 0 means 120. Smaller ones leave the words larger on a small screen
 }
 
 // edgeOr returns the edge of a chart's square, mm.
@@ -125,7 +127,7 @@ func fieldLayout(f *tune.Field, o FieldChart) (lines, legend []string, b box, p 
 		legend = append(legend, bodyType.Wrap(l, width-2*chartMargin)...)
 	}
 	top := chartMargin + titleType.Leading() + float64(len(lines))*bodyType.Leading() + 9
-	b = box{at: drawing.Point{X: chartMargin + chartLeft, Y: top}, edge: edge, x: axisOf(f.X, f.Columns), y: axisOf(f.Y, f.Rows)}
+	b = box{at: drawing.Point{X: chartMargin + chartLeft, Y: top}, edge: edge, x: axisOf(f.X, f.Columns), y: axisOf(f.Y, f.Rows), in: o.In}
 	return lines, legend, b, &drawing.Page{Width: width, Height: top + edge + 16 + float64(len(legend))*bodyType.Leading() + chartMargin}
 }
 
@@ -171,16 +173,17 @@ next:
 
 // fieldLegend says what is drawn, and names the points.
 func fieldLegend(f *tune.Field, o FieldChart) []string {
-	lines := []string{"Cross: as it stands. Circle: the best. Black line: within 1 % of the best. Dashes: the ridge. White lines: equal " + o.Goal + ". Light grey: no such stone can be cut, or it breaks a limit."}
+	lines := []string{o.In.Say("Cross: as it stands. Circle: the best. Black line: within 1 %% of the best. Dashes: the ridge. White lines: equal %s. "+
+		"Light grey: no such stone can be cut, or it breaks a limit.", o.Goal)}
 	if f.Done < 1 {
-		lines = append(lines, strconv.Itoa(int(100*f.Done))+" % of the cells are seen so far.")
+		lines = append(lines, o.In.Say("%d %% of the cells are seen so far.", int(100*f.Done)))
 	}
 	for i, q := range o.Points {
-		words := strconv.Itoa(i+1) + "  " + q.Words
+		point := strconv.Itoa(i+1) + "  " + q.Words
 		if q.X < f.X.Low || q.X > f.X.High || q.Y < f.Y.Low || q.Y > f.Y.High {
-			words += " (outside the field)"
+			point = o.In.Say("%s (outside the field)", point)
 		}
-		lines = append(lines, words)
+		lines = append(lines, point)
 	}
 	return lines
 }
@@ -229,7 +232,7 @@ func (b *box) scale(p *drawing.Page, colours *picture.ColourMap, low, high float
 	for _, v := range Levels(low, high, contourLines) {
 		y := at.Y + b.edge*(high-v)/(high-low)
 		p.Line(drawing.Style{Stroke: black, Width: 0.2}, drawing.Point{X: at.X + scaleWidth, Y: y}, drawing.Point{X: at.X + scaleWidth + 1, Y: y})
-		p.Write(smallType, black, drawing.Left, drawing.Point{X: at.X + scaleWidth + 1.6, Y: y + smallType.Height()/2 - 0.3}, number(v))
+		p.Write(smallType, black, drawing.Left, drawing.Point{X: at.X + scaleWidth + 1.6, Y: y + smallType.Height()/2 - 0.3}, number(b.in, v))
 	}
 	p.Write(smallType, pale, drawing.Left, drawing.Point{X: at.X, Y: at.Y - 1.5}, smallType.Cut(goal, scaleWidth+scaleRoom))
 }

@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"pavilight/app/drawing"
+	"pavilight/app/words"
 	"pavilight/trace/tune"
 )
 
@@ -11,9 +12,10 @@ import (
 type FrontChart struct {
 	Title string
 	Lines []string
-	Aims  [2]string // what the two goals are
-	Mark  int       // number of the point that is filled, from 1; 0 for none
-	Edge  float64   // of the square, mm; 0 means 120
+	Aims  [2]string    // what the two goals are
+	Mark  int          // number of the point that is filled, from 1; 0 for none
+	Edge  float64      // of the square, mm; 0 means 120
+	In    *words.Words // the language of what the chart itself writes; nil for English
 }
 
 // Front draws a trade-off: the stones that no other beats in both goals, with their
@@ -34,6 +36,7 @@ func Front(f *tune.Front, o FrontChart) *drawing.Page {
 		y += bodyType.Leading()
 	}
 	b := frontBox(f, top, edge)
+	b.in = o.In
 	b.axes(p, tune.Variable{Name: o.Aims[0]}, tune.Variable{Name: o.Aims[1]})
 	var line tune.Line
 	for _, t := range f.Points {
@@ -54,7 +57,7 @@ func Front(f *tune.Front, o FrontChart) *drawing.Page {
 		b.cross(p, b.place(f.Start.Measures[0], f.Start.Measures[1]))
 	}
 	p.Write(bodyType, black, drawing.Left, drawing.Point{X: chartMargin, Y: top + edge + 14},
-		"Cross: as it stands. Circles: no other stone seen beats them in both. Bars: standard errors.")
+		o.In.Say("Cross: as it stands. Circles: no other stone seen beats them in both. Bars: standard errors."))
 	return p
 }
 

@@ -5,12 +5,14 @@ import (
 	"slices"
 
 	"pavilight/app/drawing"
+	"pavilight/app/words"
 	"pavilight/trace/tune"
 )
 
 // Spread draws how often stones cut with errors come to which value: bars, the plan as it
-// stands as a line, and the values below which 5, 50 and 95 of 100 stones lie.
-func Spread(title string, about []string, name string, values []float64, s tune.Spread) *drawing.Page {
+// stands as a line, and the values below which 5, 50 and 95 of 100 stones lie. What the
+// chart itself writes is in a language, English for nil.
+func Spread(in *words.Words, title string, about []string, name string, values []float64, s tune.Spread) *drawing.Page {
 	const high = 60.0
 	width := chartMargin + chartLeft + chartEdge + chartMargin
 	var lines []string
@@ -48,7 +50,7 @@ func Spread(title string, about []string, name string, values []float64, s tune.
 	p.Line(drawing.Style{Stroke: black, Width: 0.25}, drawing.Point{X: at(least), Y: base}, drawing.Point{X: at(most), Y: base})
 	for _, v := range Levels(least, most, 6) {
 		p.Line(drawing.Style{Stroke: black, Width: 0.2}, drawing.Point{X: at(v), Y: base}, drawing.Point{X: at(v), Y: base + 1})
-		p.Write(smallType, black, drawing.Middle, drawing.Point{X: at(v), Y: base + 1.6 + smallType.Height()}, number(v))
+		p.Write(smallType, black, drawing.Middle, drawing.Point{X: at(v), Y: base + 1.6 + smallType.Height()}, number(in, v))
 	}
 	for _, v := range []float64{s.Low, s.Median, s.High} {
 		p.Line(drawing.Style{Stroke: black, Width: 0.25, Dash: []float64{1, 0.8}}, drawing.Point{X: at(v), Y: top}, drawing.Point{X: at(v), Y: base})
@@ -56,6 +58,6 @@ func Spread(title string, about []string, name string, values []float64, s tune.
 	p.Line(drawing.Style{Stroke: black, Width: 0.5}, drawing.Point{X: at(s.Plan), Y: top}, drawing.Point{X: at(s.Plan), Y: base})
 	p.Write(bodyType, black, drawing.Middle, drawing.Point{X: at((least + most) / 2), Y: base + 4.5 + bodyType.Height()}, name)
 	p.Write(bodyType, black, drawing.Left, drawing.Point{X: chartMargin, Y: base + 14},
-		"Bars: how many stones. Thick line: the plan without errors. Dashes: 5, 50 and 95 of 100 stones lie below.")
+		in.Say("Bars: how many stones. Thick line: the plan without errors. Dashes: 5, 50 and 95 of 100 stones lie below."))
 	return p
 }

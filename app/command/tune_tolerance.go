@@ -102,7 +102,7 @@ func (t *tuning) tolerance() error {
 		rows = append(rows, []string{fmt.Sprint(i + 1), exact(d.Return), exact(d.Leaky), exact(d.GapMM), exact(d.EdgeMM), fmt.Sprint(d.Lost)})
 		values = append(values, d.Return)
 	}
-	page := chart.Spread(t.name, []string{fmt.Sprintf("%s, %.2f mm, %s", t.material.Name, t.width, t.caseWords()), fmt.Sprintf("%d stones cut with errors: %s", len(r.Draws), slipWords(machine))},
+	page := chart.Spread(nil, t.name, []string{fmt.Sprintf("%s, %.2f mm, %s", t.material.Name, t.width, t.caseWords()), fmt.Sprintf("%d stones cut with errors: %s", len(r.Draws), slipWords(machine))},
 		"light return", values, r.Return)
 	if err := t.picture("tolerance", page, rows); err != nil {
 		return err

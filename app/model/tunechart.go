@@ -1,7 +1,6 @@
 package model
 
 import (
-	"fmt"
 	"image"
 
 	"pavilight/app/chart"
@@ -40,9 +39,9 @@ func (t *Tune) paintChart() {
 		o := t.fieldChart()
 		key, draw = chartKey{field, pick}, func() *drawing.Page { return chart.Field(field, o) }
 	case front != nil && len(front.Points) > 0:
-		o := chart.FrontChart{Title: t.planUsed.Name, Edge: t.chartEdge()}
+		o := chart.FrontChart{In: t.words, Title: t.planUsed.Name, Edge: t.chartEdge()}
 		for i, a := range t.aimsUsed[:2] {
-			o.Aims[i] = a.Measure.Name()
+			o.Aims[i] = t.words.Say(MeasureName(a.Measure))
 		}
 		for i := range front.Points {
 			if pick == &front.Points[i] {
@@ -52,13 +51,14 @@ func (t *Tune) paintChart() {
 		key, draw = chartKey{front, pick}, func() *drawing.Page { return chart.Front(front, o) }
 	case tolerance != nil && len(tolerance.Draws) > 0:
 		title := t.planUsed.Name
-		about := []string{fmt.Sprintf("light return of %d stones cut with errors", len(tolerance.Draws))}
+		about := []string{t.words.Say("light return of %d stones cut with errors", len(tolerance.Draws))}
+		in, name := t.words, t.words.Say(MeasureName(tune.LightReturn))
 		values := make([]float64, len(tolerance.Draws))
 		for i, d := range tolerance.Draws {
 			values[i] = d.Return
 		}
 		key, draw = chartKey{tolerance, nil}, func() *drawing.Page {
-			return chart.Spread(title, about, "light return", values, tolerance.Return)
+			return chart.Spread(in, title, about, name, values, tolerance.Return)
 		}
 	default:
 		return
@@ -81,18 +81,18 @@ func (t *Tune) chartEdge() float64 {
 // goalName says what the score of the answer is.
 func (t *Tune) goalName() string {
 	if len(t.aimsUsed) == 1 {
-		return t.aimsUsed[0].Measure.Name()
+		return t.words.Say(MeasureName(t.aimsUsed[0].Measure))
 	}
-	return "goal"
+	return t.words.Say("goal")
 }
 
 func (t *Tune) fieldChart() chart.FieldChart {
-	o := chart.FieldChart{Title: t.planUsed.Name, Goal: t.goalName(), Edge: t.chartEdge()}
+	o := chart.FieldChart{In: t.words, Title: t.planUsed.Name, Goal: t.goalName(), Edge: t.chartEdge()}
 	if len(t.aimsUsed) == 1 && t.aimsUsed[0].Weight < 0 {
 		o.Goal = "−" + o.Goal
 	}
 	if t.Pick != nil && len(t.Pick.Values) == 2 {
-		o.Points = []chart.Point{{X: t.Pick.Values[0], Y: t.Pick.Values[1], Words: "picked"}}
+		o.Points = []chart.Point{{X: t.Pick.Values[0], Y: t.Pick.Values[1], Words: t.words.Say("picked")}}
 	}
 	return o
 }
