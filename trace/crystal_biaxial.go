@@ -240,7 +240,7 @@ func (l *throughline) meets(c *biaxial, sign, start float64) (z float64, ok bool
 		next := (sign*math.Sqrt(max(0, square)) - b) / l.a
 		moved := math.Abs(next - z)
 		z, ok = next, square > 0
-		if moved <= 1e-15 {
+		if moved <= 1e-12 { // the next would move by the square of it
 			break
 		}
 	}

@@ -244,6 +244,33 @@ func TestUniaxialLimit(t *testing.T) {
 	}
 }
 
+// TestIndicesInAnyOrder lets the indices change places, as dispersion may make them do
+// over the spectrum: the same crystal must come out.
+func TestIndicesInAnyOrder(t *testing.T) {
+	rng := rand.New(rand.NewPCG(12, 6))
+	for range 200 {
+		c := strong(rng)
+		k := waveAlong(c, unit(rng), true)
+		v, m := unit(rng), 1.0
+		if rayOf(c, k, true).dot(v) < 0.05 {
+			continue
+		}
+		want := inside(c, k, true, v, m)
+		for _, order := range [][3]int{{0, 2, 1}, {1, 0, 2}, {1, 2, 0}, {2, 0, 1}, {2, 1, 0}} {
+			var o orientation
+			var p gems.Principal
+			for i, j := range order {
+				o[i], p[i] = c.axes[j], c.index[j]
+			}
+			got := inside(newBiaxial(&o, p), k, true, v, m)
+			for i := range 2 {
+				near(t, "share of a reflected wave", got.power[i], want.power[i], 1e-9, "the same tensor")
+			}
+			near(t, "share that goes through", got.through.i, want.through.i, 1e-9, "the same tensor")
+		}
+	}
+}
+
 // TestHollow finds lines that meet the slower wave's surface four times, around an optic
 // axis, and holds their waves against Maxwell's equations.
 func TestHollow(t *testing.T) {

@@ -413,3 +413,31 @@ func TestAgainstBerreman(t *testing.T) {
 		t.Errorf("only %d meetings compared", tried)
 	}
 }
+
+// BenchmarkCrystal sends a wave from facet to facet.
+func BenchmarkCrystal(b *testing.B) {
+	for name, p := range map[string]gems.Principal{"uniaxial": {1.619, 1.619, 1.627}, "biaxial": topaz} {
+		b.Run(name, func(b *testing.B) {
+			b.ReportAllocs()
+			rng := rand.New(rand.NewPCG(4, 7))
+			o := turned(rng)
+			c := newCrystal(&o, p)
+			var facets [64]vec
+			for i := range facets {
+				facets[i] = unit(rng)
+			}
+			w := wave{k: waveAlong(c, unit(rng), true), extra: true}
+			w.ray = rayOf(c, w.k, true)
+			for i := 0; b.Loop(); i++ {
+				v := facets[i%len(facets)]
+				if v.dot(w.ray) < 0 {
+					v = v.scale(-1)
+				}
+				s := inside(c, w.k, w.extra, v, 1)
+				if s.power[i%2] > 0 {
+					w = s.back[i%2]
+				}
+			}
+		})
+	}
+}

@@ -17,7 +17,7 @@ type Path struct {
 	IndexMedium float64
 	Critical    facets.Angle // inside the stone, from the normal; meaningful only if HasCritical
 	HasCritical bool
-	AsIfSingly  bool // the stone refracts doubly; shown is a ray of its ordinary index, polarised as in a stone of that index
+	AsIfSingly  bool // the stone refracts doubly; shown is a ray of its ordinary index, or of the mean of three, polarised as in a stone of that index
 
 	Dish      bool         // the medium is a liquid with a flat surface; the eye is in air
 	Liquid    float64      // share that its surface mirrors before the ray reaches the stone; 0 without a dish
@@ -57,7 +57,8 @@ const (
 // and y run from 0 to 1 across the picture from its top left corner; the
 // wavelength is the settings', the sodium D line for the spectrum. ok is false
 // where the ray passes beside the stone. In a doubly refracting stone a ray parts into
-// ever more; shown is what a stone of its ordinary index does, and the path says so.
+// ever more; shown is what a stone of its ordinary index, or of the mean of three, does, and
+// the path says so.
 func Follow(scene Scene, column int, settings Settings, x, y float64) (p *Path, ok bool, err error) {
 	if err := settings.check(); err != nil {
 		return nil, false, err

@@ -293,6 +293,14 @@ func TestDoubleScenes(t *testing.T) {
 			Surroundings: Around(air, plain(t, "dense", 2.4))}
 		columns = append(columns, mustRun(t, scene, Settings{Wavelength: 550, Pixels: 6, Samples: 4, Below: 1}).Columns...)
 	}
+	// Seen exactly along an optic axis, where each ray spreads into a cone.
+	c := upright(gems.Principal{1.9, 1.907, 2.034})
+	bisectrix := c.one.plus(1, c.two).mgl()
+	turn := mgl64.QuatBetweenVectors(c.one.mgl(), mgl64.Vec3{0, 0, 1})
+	bisectrix = turn.Rotate(bisectrix)
+	across := turn.Rotate(c.one.plus(-1, c.two).mgl())
+	columns = append(columns, mustRun(t, Scene{Stone: stones(t)["round.toml"], Material: sphene, Axis: &bisectrix, Plane: &across,
+		Surroundings: Around(air)}, Settings{Wavelength: 550, Pixels: 6, Samples: 4, Below: 1}).Columns...)
 	for _, c := range columns {
 		near(t, "uniform surround", c.Lit.Sum+c.Ledger.Unresolved, 1, 1e-9,
 			"a lossless stone in a uniform surround shows the surround")

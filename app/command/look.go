@@ -414,7 +414,7 @@ func printLook(w io.Writer, s *subject, scene trace.Scene, r *lookResult, result
 	row("index around", func(i int) string { return fmt.Sprintf("%.4f", r.Media[i].IndexMedium) })
 	row("index of the stone", func(i int) string { return fmt.Sprintf("%.4f", r.Media[i].IndexStone) })
 	row("critical angle", func(i int) string { return inDegrees(r.Media[i].CriticalDeg, "there is none") })
-	for k := range result.Columns[0].Limits { // of both rays, the lower index first: warnings go by that one
+	for k := range result.Columns[0].Limits { // the lowest first: warnings go by that one
 		row(fmt.Sprintf("at its index %.4f", result.Columns[0].Limits[k].Index), func(i int) string {
 			limit := result.Columns[i].Limits[k]
 			if !limit.HasCritical {
