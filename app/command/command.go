@@ -58,7 +58,8 @@ func commandFaultf(format string, args ...any) error {
 // Main runs the command that the arguments (without the program's name) ask for and
 // returns its exit status. Without arguments, or with a plan or scan alone, it opens
 // the window. It stops when ctx is cancelled. Nothing is printed to Stdout by a
-// command that fails.
+// command that fails, but for a sweep of which some jobs failed and a search that was
+// stopped: they print what there is.
 func Main(ctx context.Context, args []string, env Environment) (status int) {
 	env.bar = env.Stderr
 	env.Stdout, env.Stderr = printable{env.Stdout}, printable{env.Stderr}

@@ -209,6 +209,9 @@ func (s *sweeping) expand() error {
 // expandLine makes the jobs of one line: each plan with each combination of settings.
 func (s *sweeping) expandLine(words []string) error {
 	k, err := s.parse(words)
+	if errors.Is(err, errAnswered) {
+		return errors.New("--help and --version are no jobs; write them on a command line of their own")
+	}
 	if err != nil {
 		return err
 	}

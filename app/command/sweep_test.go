@@ -435,7 +435,7 @@ func TestSweepKnowsItsFiles(t *testing.T) {
 func TestSweepRefuses(t *testing.T) {
 	sweepFolder(t)
 	for name, text := range map[string]string{
-		"faults.txt": "tent.toml --tilt 95\n\ntent.toml --moon\ntent.toml --out here\ntent.toml --over out=a,b\n",
+		"faults.txt": "tent.toml --tilt 95\n\ntent.toml --moon\ntent.toml --out here\ntent.toml --over out=a,b\n--help\n",
 		"quote.txt":  "tent.toml\n\"tent.toml\n",
 		"empty.txt":  "# nothing\n",
 	} {
@@ -448,7 +448,7 @@ func TestSweepRefuses(t *testing.T) {
 		status int
 		words  []string
 	}{
-		{[]string{"look", "--list", "faults.txt"}, InputFault, []string{"faults.txt:1:", "-89 to 89", "faults.txt:3:", "--moon", "faults.txt:4:", "--out", "faults.txt:5:"}},
+		{[]string{"look", "--list", "faults.txt"}, InputFault, []string{"faults.txt:1:", "-89 to 89", "faults.txt:3:", "--moon", "faults.txt:4:", "--out", "faults.txt:5:", "faults.txt:6: --help"}},
 		{[]string{"look", "--list", "quote.txt"}, InputFault, []string{"quote.txt:2:", "not closed"}},
 		{[]string{"look", "--list", "empty.txt"}, InputFault, []string{"no job"}},
 		{[]string{"look", "--list", "none.txt"}, InputFault, []string{"none.txt", "check the name"}},

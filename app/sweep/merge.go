@@ -70,7 +70,11 @@ func shardFiles(folder string) (files []shardFile, notes []string, err error) {
 		if e.IsDir() || strings.HasPrefix(name, ".") || filepath.Ext(name) != ".jsonl" {
 			continue
 		}
-		head, rows, err := open(filepath.Join(folder, name))
+		path := filepath.Join(folder, name)
+		if info, err := os.Stat(path); err != nil || !info.Mode().IsRegular() {
+			continue
+		}
+		head, rows, err := open(path)
 		switch {
 		case err == nil && head.Of > 0 && head.Digest == "":
 			err = errDamaged

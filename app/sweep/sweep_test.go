@@ -288,6 +288,11 @@ func TestMerge(t *testing.T) {
 	}{
 		{"as they are", func(string) {}, false, ""},
 		{"a repeat", func(f string) { change(t, filepath.Join(f, part(2)), filepath.Join(f, "copy.jsonl"), "", "") }, false, ""},
+		{"a folder of a shard's name", func(f string) {
+			if err := os.Mkdir(filepath.Join(f, "shard-4-of-3.jsonl"), 0o700); err != nil {
+				t.Fatal(err)
+			}
+		}, false, ""},
 		{"earlier results", func(f string) {
 			if err := os.WriteFile(filepath.Join(f, "results.jsonl"), []byte(lines(t, f)), 0o600); err != nil {
 				t.Fatal(err)
