@@ -330,6 +330,8 @@ type victim struct {
 	news    map[string][]byte // what a run that is not killed writes
 	whole   time.Duration     // of such a run
 	write   time.Duration     // of one file
+
+	patience int // how many may end before they are killed, until none is aimed at any more
 }
 
 // learn runs the command to its end, with other arguments for the old files.
@@ -393,7 +395,7 @@ func (v *victim) kill(t *testing.T, n *tally) {
 	}
 	ended := make(chan struct{})
 	go func() { c.Wait(); close(ended) }()
-	if n.kills%4 != 0 { // aimed at one of the writes
+	if n.kills%4 != 0 && n.late < v.patience { // aimed at one of the writes
 		seen.write(rand.IntN(len(v.news)), ended, rand.N(v.write))
 	} else {
 		select {
@@ -439,6 +441,7 @@ func (v *victim) kill(t *testing.T, n *tally) {
 
 // harm kills the command so many times.
 func (v *victim) harm(t *testing.T, kills int) (n tally) {
+	v.patience = 8*kills + 20
 	for n.kills < kills && n.late < 20*kills+50 && !t.Failed() {
 		v.kill(t, &n)
 	}

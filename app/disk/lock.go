@@ -24,7 +24,7 @@ var errHeld = ErrHeld
 // LockFile claims the file at path, which is made if it is not there. If another holds
 // it the error is ErrHeld. Where the system has no locks the claim is granted.
 func LockFile(path string) (*Lock, error) {
-	for {
+	for try := 1; ; try++ {
 		f, err := os.OpenFile(path, os.O_RDWR|os.O_CREATE, 0o644)
 		if err != nil {
 			return nil, InWords(path, err)
@@ -33,7 +33,7 @@ func LockFile(path string) (*Lock, error) {
 			f.Close()
 			return nil, ErrHeld
 		}
-		if isStill(f) {
+		if isStill(f) || try == mostTries {
 			return &Lock{file: f}, nil
 		}
 		f.Close() // whoever held it has just removed it
@@ -77,11 +77,12 @@ func holdTarget(path string) (release func(), err error) {
 			return func() {}, nil // what is wrong, if anything is, the replacing says in words
 		}
 		held := tryLock(f) == errHeld
-		if !held && isStill(f) {
+		late := time.Now().After(end)
+		if !held && (isStill(f) || late) {
 			return func() { f.Close() }, nil
 		}
 		f.Close()
-		if held && time.Now().After(end) {
+		if late {
 			return nil, words.Errorf("%s is being written by another program; try again, or save under another name", path)
 		}
 	}

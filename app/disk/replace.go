@@ -129,17 +129,22 @@ func newName(base string) string {
 // createHeld creates a new file that is locked while it is open, which tells it from one
 // that a killed program left behind.
 func createHeld(folder, pattern string) (*os.File, error) {
-	for {
+	for try := 1; ; try++ {
 		f, err := os.CreateTemp(folder, pattern)
 		if err != nil {
 			return nil, err
 		}
-		if tryLock(f) != errHeld && isStill(f) {
+		if tryLock(f) != errHeld && isStill(f) || try == mostTries {
 			return f, nil
 		}
 		f.Close() // another program was just sweeping, and took it for a leftover
+		os.Remove(f.Name())
 	}
 }
+
+// mostTries bounds what is tried again while other programs come in between. There are
+// file systems whose files never look like the same file twice.
+const mostTries = 20
 
 // isStill reports whether the open file still bears its name.
 func isStill(f *os.File) bool {
