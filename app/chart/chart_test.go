@@ -45,8 +45,8 @@ func hill() *tune.Field {
 	return f
 }
 
-// words returns all that is written on a page.
-func words(p *drawing.Page) string {
+// wordsOn returns all that is written on a page.
+func wordsOn(p *drawing.Page) string {
 	var all []string
 	for _, m := range p.Marks {
 		if t, ok := m.(*drawing.Text); ok {
@@ -62,7 +62,7 @@ func TestField(t *testing.T) {
 	page := Field(hill(), FieldChart{Title: "Hill", Lines: []string{"quartz, 6 mm"}, Goal: "light return", Points: []Point{
 		{42, 34, "Someone 1919"}, {42.01, 34, "Someone 1930"}, {39, 34, "Beyond"},
 	}})
-	text := words(page)
+	text := wordsOn(page)
 	for _, want := range []string{"Hill", "P1, degrees", "C2, degrees", "Someone 1919", "Beyond (outside the field)", "1 2", "42", "34"} {
 		if !strings.Contains(text, want) {
 			t.Errorf("%q is missing in\n%s", want, text)
@@ -129,8 +129,8 @@ func TestFrontAndSpread(t *testing.T) {
 			circles++
 		}
 	}
-	if circles != 5 || !strings.Contains(words(page), "leakage") {
-		t.Errorf("%d circles, want 5\n%s", circles, words(page))
+	if circles != 5 || !strings.Contains(wordsOn(page), "leakage") {
+		t.Errorf("%d circles, want 5\n%s", circles, wordsOn(page))
 	}
 	inside(t, page)
 	inside(t, Front(&tune.Front{Points: f.Points[:1]}, FrontChart{}))
