@@ -16,7 +16,7 @@ import (
 //
 //	1/n² = mean + half cos(a ± b),   mean = (1/alpha² + 1/gamma²)/2
 //
-// Born & Wolf, Principles of Optics, 7th ed., 15.3.1 (11) and 15.3.3 (17); minus is the
+// Born & Wolf, Principles of Optics, 7th ed., 15.2 and 15.3.3; minus is the
 // faster wave. Times k.k = n² it reads for wave vectors of any size, real or complex,
 //
 //	mean k.k + half (k.one)(k.two) - 1 = ± half r,   r = √(k x one)² √(k x two)²
@@ -55,7 +55,7 @@ func newBiaxial(o *orientation, p gems.Principal) *biaxial {
 	a, b, g := 1/(p[low]*p[low]), 1/(p[mid]*p[mid]), 1/(p[high]*p[high])
 	c.middle, c.mean, c.half = b, (a+g)/2, (a-g)/2
 	if a > g {
-		// tan² of the angle between gamma and an axis is (a-b)/(b-g): 15.3.3 (14).
+		// tan² of the angle between gamma and an axis is (a-b)/(b-g): 15.3.3.
 		sin, cos := math.Sqrt((a-b)/(a-g)), math.Sqrt((b-g)/(a-g))
 		c.one = o[high].scale(cos).plus(sin, o[low])
 		c.two = o[high].scale(cos).plus(-sin, o[low])
@@ -143,7 +143,14 @@ func (c *biaxial) line(f *facetFrame) throughline {
 	l.a = c.mean + c.half*oneV*twoV
 	l.b = c.half * (oneQ*twoV + twoQ*oneV) / 2
 	l.g = c.mean*f.size*f.size + c.half*oneQ*twoQ - 1
+	l.findOuter(c)
+	l.findInner(c)
+	return l
+}
 
+// findOuter finds where the line meets the slower wave's surface first and last, or a
+// pair of waves that decay where it passes beside.
+func (l *throughline) findOuter(c *biaxial) {
 	// The surface lies within the sphere k.k = gamma².
 	beyond := math.Sqrt(max(0, 1/(c.mean-c.half)-l.size*l.size))
 	first, atFirst := l.meets(c, -1, -beyond)
@@ -161,32 +168,35 @@ func (c *biaxial) line(f *facetFrame) throughline {
 			}
 		}
 	}
-	var sum, product float64 // of the outer two
 	if atFirst || atLast {
 		first, last = l.chord(c, first, last)
 		l.outer = [2]complex128{complex(first, 0), complex(last, 0)}
-		sum, product = first+last, first*last
 	} else {
 		z := l.decays(c)
 		l.outer = [2]complex128{cmplx.Conj(z), z}
-		sum, product = 2*real(z), square(z)
 	}
+}
 
-	// (a z² + 2 b z + g)² - half² (k x one)² (k x two)² = 0
+// findInner finds the other two roots of
+//
+//	(a z² + 2 b z + g)² - half² (k x one)² (k x two)² = 0
+func (l *throughline) findInner(c *biaxial) {
 	h2 := c.half * c.half
 	one2, two2 := l.oneV.dot(l.oneV), l.twoV.dot(l.twoV)
 	oneX, twoX := l.oneQ.dot(l.oneV), l.twoQ.dot(l.twoV)
 	z4 := l.a*l.a - h2*one2*two2
 	z3 := 4*l.a*l.b - 2*h2*(oneX*two2+twoX*one2)
 	z2 := 4*l.b*l.b + 2*l.a*l.g - h2*(l.oneQ.dot(l.oneQ)*two2+l.twoQ.dot(l.twoQ)*one2+4*oneX*twoX)
+
+	sum, product := real(l.outer[0]+l.outer[1]), real(l.outer[0]*l.outer[1]) // of the outer two
 	middle := (-z3/z4 - sum) / 2
-	square := middle*middle - (z2/z4 - product - 2*middle*sum)
-	if square <= 0 {
-		half := math.Sqrt(-square)
-		l.inner = [2]complex128{complex(middle, -half), complex(middle, half)}
-		return l
+	root2 := middle*middle - (z2/z4 - product - 2*middle*sum)
+	if root2 <= 0 {
+		root := math.Sqrt(-root2)
+		l.inner = [2]complex128{complex(middle, -root), complex(middle, root)}
+		return
 	}
-	low, high := middle-math.Sqrt(square), middle+math.Sqrt(square)
+	low, high := middle-math.Sqrt(root2), middle+math.Sqrt(root2)
 	const clearly = 1e-9 // above rounding
 	if l.a*high*high+2*l.b*high+l.g > clearly {
 		// Around an optic axis the outer surface has a hollow; the line passes through it.
@@ -194,7 +204,6 @@ func (c *biaxial) line(f *facetFrame) throughline {
 		low, high = high, low
 	}
 	l.inner = [2]complex128{complex(low, 0), complex(high, 0)}
-	return l
 }
 
 // mostSteps is far more than it takes but where the line only just touches a surface.
@@ -393,7 +402,7 @@ func complexLine(a, b vec, z complex128) complexVec {
 	return complexVec{a.plus(real(z), b), b.scale(imag(z))}
 }
 
-// along returns the part of a along the real unit vector b.
+// along returns the product of a and the real vector b.
 func (a complexVec) along(b vec) complex128 { return complex(a.re.dot(b), a.im.dot(b)) }
 
 // dot returns the sum of the products of the components, without a conjugate.

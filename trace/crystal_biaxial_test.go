@@ -126,7 +126,7 @@ func TestOpticAxes(t *testing.T) {
 	} {
 		c := upright(row.p)
 		near(t, row.name+": angle between the optic axes", math.Acos(c.one.dot(c.two))*180/math.Pi, row.degrees, 0.01,
-			"tan²V = (α⁻² - β⁻²)/(β⁻² - γ⁻²), worked out apart, "+book+"15.3.3 (14); "+row.source)
+			"tan²V = (α⁻² - β⁻²)/(β⁻² - γ⁻²), worked out apart, "+book+"15.3.3; "+row.source)
 		for _, axis := range []vec{c.one, c.two, c.one.scale(-1)} {
 			var rays [2]vec
 			for i, extra := range []bool{false, true} {
