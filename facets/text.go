@@ -174,7 +174,7 @@ func splitBlocks(data []byte, file string) ([]*block, error) {
 
 // notTOML turns the decoder's error into a fault.
 func notTOML(data []byte, file string, err error) *Fault {
-	f := &Fault{File: file, Why: "this is not TOML: " + strings.TrimPrefix(err.Error(), "toml: "),
+	f := &Fault{File: file, Why: "this is not TOML: " + shortenTo(mostWhy, strings.TrimPrefix(err.Error(), "toml: ")),
 		Remedy: "see the sample plans for how one is written"}
 	var de *toml.DecodeError
 	if errors.As(err, &de) {
@@ -358,8 +358,13 @@ func lineOf(data []byte, number int) string {
 
 // shorten cuts a piece of the user's text to what a message can hold, and
 // makes it printable.
-func shorten(s string) string {
-	const most = 60
+func shorten(s string) string { return shortenTo(60, s) }
+
+// mostWhy is how many letters of the TOML package's own words a message can hold: it may
+// quote a whole line.
+const mostWhy = 200
+
+func shortenTo(most int, s string) string {
 	r := []rune(strings.ToValidUTF8(s, "?"))
 	if len(r) > most {
 		r = append(r[:most], []rune("...")...)

@@ -52,14 +52,14 @@ func (d *document) fault(path, name, field, got, why, remedy string) {
 	for above := path; line == 0 && above != ""; line = d.lines[above] {
 		above = above[:max(strings.LastIndexByte(above, '.'), 0)]
 	}
+	const most = 60 // letters of a piece that is quoted
 	d.faults = append(d.faults, &Fault{
-		File: d.file, Line: line, Material: shorten(name), Field: shorten(field), Got: shorten(got), Why: why, Remedy: remedy,
+		File: d.file, Line: line, Material: shorten(name, most), Field: shorten(field, most), Got: shorten(got, most), Why: why, Remedy: remedy,
 	})
 }
 
-// shorten cuts a piece of the user's text to what a message can hold.
-func shorten(s string) string {
-	const most = 60
+// shorten cuts a piece of the user's text to what a message can hold, so many letters.
+func shorten(s string, most int) string {
 	if r := []rune(s); len(r) > most {
 		return string(r[:most]) + "..."
 	}

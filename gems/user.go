@@ -72,7 +72,8 @@ func ReadMaterials(r io.Reader, file string) ([]*Material, error) {
 
 // notTOML tells where a text stops being TOML.
 func notTOML(err error, file string) *Fault {
-	why := "this is not TOML: " + strings.TrimPrefix(err.Error(), "toml: ")
+	const most = 200 // letters; the decoder may quote a whole line
+	why := "this is not TOML: " + shorten(strings.TrimPrefix(err.Error(), "toml: "), most)
 	f := &Fault{File: file, Why: why, Remedy: "correct this line"}
 	var de *toml.DecodeError
 	if errors.As(err, &de) {

@@ -204,6 +204,9 @@ func FuzzReadMachine(f *testing.F) {
 				if one.Why == "" || one.Remedy == "" {
 					t.Errorf("%v has no reason or remedy", one)
 				}
+				if n := len(one.Error()); n > 2000 {
+					t.Errorf("%d bytes of message", n)
+				}
 			}
 			return
 		}

@@ -116,7 +116,9 @@ func decodeFaults(err error, file string) facets.Faults {
 		}
 		return all
 	}
-	f := &facets.Fault{File: file, Why: strings.TrimPrefix(err.Error(), "toml: "), Remedy: "correct this line"}
+	why := []rune(strings.TrimPrefix(err.Error(), "toml: "))
+	const most = 200 // letters; the decoder may quote a whole line
+	f := &facets.Fault{File: file, Why: string(why[:min(most, len(why))]), Remedy: "correct this line"}
 	var de *toml.DecodeError
 	if errors.As(err, &de) {
 		f.Line, _ = de.Position()
