@@ -64,7 +64,7 @@ var mutations = []struct{ what, file, old, new string }{
 	{"picture turned by a quarter", "view.go", "turned.Rotate(mgl64.Vec3{1, 0, 0})",
 		"turned.Rotate(mgl64.Vec3{0, 1, 0})"},
 	{"spread of the means for the error of their mean", "sums.go",
-		"math.Sqrt(spread / (scramblings * (scramblings - 1)))", "math.Sqrt(spread / (scramblings - 1))"},
+		"math.Sqrt(spread / (met * (met - 1)))", "math.Sqrt(spread / (met - 1))"},
 	{"light below not seen by mirroring", "sums.go", "s[mirrorsLight] + below*s[mirrorsBelow]",
 		"s[mirrorsLight]"},
 	{"ray on the wrong side of the wave's normal", "crystal_uniaxial.go",

@@ -156,7 +156,7 @@ func (r *run) finished() bool {
 	switch {
 	case r.traced >= mostPoints:
 		return true
-	case r.rays == 0:
+	case r.rays == 0, len(r.columns) > 0 && !complete(&r.columns[0].scrambled): // all columns have the same rays
 		return false
 	case r.settings.Samples > 0:
 		return r.traced >= r.wanted()
@@ -164,7 +164,8 @@ func (r *run) finished() bool {
 	return r.error < r.settings.Error && r.raysAPixel() >= leastRays
 }
 
-func (r *run) raysAPixel() float64 { return float64(r.rays*r.images) / float64(r.grid.area) }
+// raysAPixel counts a stone that lies between the middles of the pixels as one.
+func (r *run) raysAPixel() float64 { return float64(r.rays*r.images) / float64(max(1, r.grid.area)) }
 
 // done estimates the share of the work that is done. The error of scrambled
 // points falls about as their number to the power of -3/4.
@@ -173,7 +174,7 @@ func (r *run) done() float64 {
 	case r.finished():
 		return 1
 	case r.settings.Samples > 0:
-		return float64(r.traced) / float64(r.wanted())
+		return min(float64(r.traced)/float64(r.wanted()), 0.99)
 	}
 	return min(math.Pow(r.settings.Error/r.error, 4.0/3), r.raysAPixel()/leastRays, 0.99)
 }

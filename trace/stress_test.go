@@ -3,8 +3,8 @@ package trace
 import (
 	"fmt"
 	"math"
-	"math/rand/v2"
 	"reflect"
+	"slices"
 	"testing"
 
 	"github.com/go-gl/mathgl/mgl64"
@@ -25,16 +25,14 @@ func stressStones(t testing.TB) map[string]*facets.Stone {
 		"cube":         solid(t, box(1, 1, 1)),
 		"needle":       solid(t, box(1e-3, 1e-3, 1)),
 		"needle lying": solid(t, box(1, 1e-3, 1e-3)),
-		"leaf":         solid(t, box(1, 1, 1e-5)),
+		"leaf":         solid(t, box(1, 1, 1e-3)),
 		"a hair wide":  stretched(t, 1e-6),
 		"a house wide": stretched(t, 1e4),
-		"2,000 facets": ball(t, 2000),
 	}
-	// A wedge that ends in an edge of a hundredth of a degree.
-	sin, cos := math.Sincos(0.005 * math.Pi / 180)
-	all["wedge"] = solid(t, append(box(1, 1, 1),
-		facets.Plane{Normal: mgl64.Vec3{sin, 0, cos}, Distance: 0, Side: facets.Crown},
-		facets.Plane{Normal: mgl64.Vec3{sin, 0, -cos}, Distance: 0, Side: facets.Pavilion})[:8])
+	if *long {
+		all["2,000 facets"] = ball(t, 2000)
+	}
+	all["wedge"] = wedge(t, 1)
 	// Facets that differ by a millionth of a turn from their neighbours, and leave slivers
 	// between them: needles of facets, a thousand times as long as wide.
 	slivers := box(1, 1, 1)
@@ -49,11 +47,19 @@ func stressStones(t testing.TB) map[string]*facets.Stone {
 	tip := []facets.Plane{{Normal: mgl64.Vec3{0, 0, 1}, Distance: 0, Side: facets.Table}}
 	for i := range 8 {
 		sinF, cosF := math.Sincos(2 * math.Pi * float64(i) / 8)
-		n := mgl64.Vec3{cosF, sinF, -0.01}.Normalize()
+		n := mgl64.Vec3{cosF, sinF, -0.05}.Normalize()
 		tip = append(tip, facets.Plane{Normal: n, Distance: n[0]*cosF + n[1]*sinF, Side: facets.Pavilion})
 	}
 	all["tip"] = solid(t, tip)
 	return all
+}
+
+// wedge is a block that ends in an edge of so many degrees.
+func wedge(t testing.TB, edge float64) *facets.Stone {
+	sin, cos := math.Sincos(edge / 2 * math.Pi / 180)
+	return solid(t, append(box(1, 1, 1)[:4],
+		facets.Plane{Normal: mgl64.Vec3{sin, 0, cos}, Side: facets.Crown},
+		facets.Plane{Normal: mgl64.Vec3{sin, 0, -cos}, Side: facets.Pavilion}))
 }
 
 // stretched is the brilliant at another size.
@@ -81,11 +87,13 @@ func ball(t testing.TB, n int) *facets.Stone {
 	return solid(t, planes)
 }
 
-// stressIndices are pairs of stone and medium.
-func stressIndices() [][2]float64 {
-	return [][2]float64{
-		{1, 1}, {1 + 1e-9, 1}, {1, 1 + 1e-9}, {1.5 + 1e-6, 1.5}, {1.5, 1.5 + 1e-6}, {1.001, 1}, {1, 1.001}, {1.3, 1.8}, {1.77, 1}, {5, 1},
-		{1, 5},
+// stressIndices are stones and the media that they are tried in: ratios of 1 and near it
+// from either side, ordinary ones and extreme ones.
+func stressIndices() map[float64][]float64 {
+	return map[float64][]float64{
+		1:   {1, 1 + 1e-9},
+		1.5: {1, 1.5 - 1e-3, 1.5 - 1e-9, 1.5, 1.5 + 1e-6, 1.8},
+		5:   {1},
 	}
 }
 
@@ -152,27 +160,38 @@ func sane(t *testing.T, what string, r *Result, tolerance float64) {
 	}
 }
 
-// Tolerances of the stress set. Rays sum to 1 within sum64 or sum32, as the package says of
-// every stone. What is left unresolved is bounded for every plan of the library by 1e-6; here
-// cubes, needles and leaves guide light between parallel faces, where it leaves only as it
-// came and by as many reflections as the guide is long, so the bound is that of the 10,000
-// bounces after which tracing gives up: a ray that is totally reflected so often belongs to
-// a guide ten thousand times as long as wide, and no facet here is that.
+// Tolerances of the stress set. Rays sum to 1 within stressSum64 or stressSum32, as the
+// package says of every stone.
+//
+// Unresolved is what 10,000 bounces did not bring out. Light that runs into an edge of an
+// angle α meets the two faces at most π/α times, as unfolding shows: 180 times at a degree,
+// and comes again from the other faces. What goes along a leaf or a needle a thousand times
+// as long as thick meets them some thousand times. What is left are the few rays that
+// go round and round under the skin of the ball of 2,000 facets: a hundred-thousandth is
+// the bound, ten times that of the plans of the library, which have no such facets.
 const (
 	stressSum64      = 1e-9
 	stressSum32      = 1e-6
-	stressUnresolved = 1e-6
+	stressUnresolved = 1e-5
 )
 
 func TestStressedNumbers(t *testing.T) {
-	air := plain(t, "air", 1)
 	worst := 0.0
+	quick := []string{"cube", "leaf", "slivers", "wedge"}
 	for name, stone := range each(stressStones(t)) {
-		for _, n := range stressIndices() {
-			for _, view := range []View{{}, {Tilt: 45 * facets.Degree, Turn: 13 * facets.Degree}, {Tilt: 89.999 * facets.Degree, Turn: 90 * facets.Degree}} {
-				what := fmt.Sprintf("%s of %g in %g at %v", name, n[0], n[1], view.Tilt)
-				scene := Scene{Stone: stone, Material: plain(t, "stone", n[0]), Surroundings: Around(plain(t, "medium", n[1]), air)}
-				s := Settings{View: view, Head: 10 * facets.Degree, Pixels: 8, Samples: 8, Seed: 3, Workers: 1}
+		if !*long && !slices.Contains(quick, name) {
+			continue
+		}
+		for n, media := range stressIndices() {
+			scene := Scene{Stone: stone, Material: plain(t, "stone", n)}
+			for _, m := range media {
+				scene.Surroundings = append(scene.Surroundings, Surrounding{Medium: plain(t, "medium", m)})
+			}
+			// Light in a block keeps its angles to the axes, so at 45° it would leave exactly level.
+			for _, tilt := range []float64{0, 44.3, 89.9} {
+				what := fmt.Sprintf("%s of %g at %g°", name, n, tilt)
+				s := Settings{View: View{Tilt: facets.Angle(tilt) * facets.Degree, Turn: 13 * facets.Degree}, Head: 10 * facets.Degree,
+					Pixels: 8, Samples: 1, Seed: 3}
 				fast := mustRun(t, scene, s)
 				sane(t, what, fast, stressSum32)
 				s.exact = true
@@ -180,13 +199,18 @@ func TestStressedNumbers(t *testing.T) {
 				sane(t, what+" in float64", exact, stressSum64)
 				for k := range exact.Columns {
 					a, b := &fast.Columns[k], &exact.Columns[k]
-					worst = max(worst, b.Ledger.Unresolved)
+					in := fmt.Sprintf("%s in %g", what, media[k])
+					worst = max(worst, a.Ledger.Unresolved, b.Ledger.Unresolved)
 					if !(max(a.Ledger.Unresolved, b.Ledger.Unresolved) <= stressUnresolved) {
-						t.Errorf("%s: %.3g and in float64 %.3g unresolved", what, a.Ledger.Unresolved, b.Ledger.Unresolved)
+						t.Errorf("%s: %.3g and in float64 %.3g unresolved", in, a.Ledger.Unresolved, b.Ledger.Unresolved)
 					}
+					// Single precision parts a ray from its double after enough bounces; from there it is
+					// another ray of the same kind, so the means keep within what chance allows.
+					const rounding, errors = 1e-5, 5
 					for q := range quantities {
-						if d, allowed := q.Of(a.Ledger)-q.Of(b.Ledger), 0.01; math.Abs(d) > allowed {
-							t.Errorf("%s: %v differs by %.3g, of %d rays", what, q, d, exact.Rays)
+						d, allowed := q.Of(a.Ledger)-q.Of(b.Ledger), rounding+errors*math.Hypot(q.Of(a.StandardError), q.Of(b.StandardError))
+						if !(math.Abs(d) <= allowed) {
+							t.Errorf("%s: %v differs by %.3g of %d rays, allowed %.3g", in, q, d, exact.Rays, allowed)
 						}
 					}
 				}
@@ -196,5 +220,98 @@ func TestStressedNumbers(t *testing.T) {
 	t.Logf("at most %.3g unresolved", worst)
 }
 
-var _ = rand.New
-var _ gems.Material
+// An edge so sharp that 10,000 bounces are not enough says so, and loses nothing.
+func TestSharpestEdge(t *testing.T) {
+	scene := Scene{Stone: wedge(t, 0.005), Material: plain(t, "stone", 1.77), Surroundings: Around(plain(t, "air", 1))}
+	r := mustRun(t, scene, Settings{View: View{Tilt: 89.9 * facets.Degree}, Pixels: 8, Samples: 1, Seed: 3, exact: true})
+	sane(t, "an edge of 0.005°", r, stressSum64)
+	if u := r.Columns[0].Ledger.Unresolved; !(u > stressUnresolved) {
+		t.Errorf("%.3g unresolved: is the bound of bounces gone?", u)
+	}
+}
+
+// The general tracer stands extremes of all that it knows.
+func TestStressedSurroundings(t *testing.T) {
+	air, water, uniaxial, biaxial := plain(t, "air", 1), plain(t, "water", 1.333), stressed(t, 1.7, 1.7+1e-9), stressed(t, 1.7, 1.7+1e-7, 1.9)
+	lean, side := &mgl64.Vec3{1e-9, 0, 1}, &mgl64.Vec3{0, 1, 0}
+	dark := *plain(t, "dark", 1.77)
+	dark.Absorption = &gems.Absorption{Wavelengths: []gems.Wavelength{400, 700}, Ordinary: []float64{1e4, 1e4}, Extraordinary: []float64{1e4, 1e4}}
+	all := stressStones(t)
+	film := func(f Film) []Coating { return []Coating{{Film: f}} }
+	for what, scene := range map[string]Scene{
+		"a dish of the stone's own index":  {Material: plain(t, "stone", 1.5), Surroundings: []Surrounding{{Medium: plain(t, "medium", 1.5+1e-9), Dish: true}}},
+		"a dish of a denser liquid":        {Material: plain(t, "stone", 1.5), Surroundings: []Surrounding{{Medium: plain(t, "medium", 5), Dish: true}}},
+		"a dish of air":                    {Material: plain(t, "stone", 5), Surroundings: []Surrounding{{Medium: air, Dish: true}}},
+		"no film":                          {Material: plain(t, "stone", 1.77), Surroundings: Around(air), Coatings: film(Film{Index: 1, Thickness: 0})},
+		"a film of the stone's own index":  {Material: plain(t, "stone", 1.77), Surroundings: Around(air), Coatings: film(Film{Index: 1.77, Thickness: 4999})},
+		"a metal-like film":                {Material: plain(t, "stone", 1.77), Surroundings: Around(air), Coatings: film(Film{Index: 1, Extinction: 10, Thickness: 1e6})},
+		"white haze":                       {Material: plain(t, "stone", 1.77), Surroundings: Around(water), Coatings: film(Film{Index: 1.5, Thickness: 1e6, Scatter: 5})},
+		"white paper and a closed setting": {Material: plain(t, "stone", 1.77), Surroundings: Around(air), Ground: &Ground{1}, Setting: &Setting{1, 0}},
+		"black inside":                     {Material: &dark, Surroundings: Around(air)},
+		"hardly doubly refracting":         {Material: uniaxial, Axis: lean, Surroundings: Around(air, plain(t, "own", 1.7))},
+		"hardly biaxial":                   {Material: biaxial, Axis: lean, Plane: side, Surroundings: Around(air)},
+	} {
+		for _, name := range []string{"brilliant", "leaf", "slivers"} {
+			if !*long && name != "slivers" {
+				continue
+			}
+			scene.Stone = all[name]
+			for i := range scene.Coatings {
+				scene.Coatings[i].Tiers = []string{""}
+			}
+			r := mustRun(t, scene, Settings{View: View{Tilt: 30 * facets.Degree}, Head: 10 * facets.Degree, Pixels: 4, Samples: 1, Seed: 3})
+			sane(t, what+" with the "+name, r, stressSum32) // the kernel knows body colour
+			for k := range r.Columns {
+				if u := r.Columns[k].Ledger.Unresolved; !(u <= stressUnresolved) {
+					t.Errorf("%s with the %s: %.3g unresolved", what, name, u)
+				}
+			}
+		}
+	}
+}
+
+// stressed is a material of these principal indices.
+func stressed(t testing.TB, indices ...float64) *gems.Material {
+	m := *plain(t, "stone", indices[0])
+	first := m.Rays[0]
+	m.Rays = nil
+	for _, n := range indices {
+		d := first
+		d.Coefficients = []float64{n}
+		m.Rays = append(m.Rays, d)
+	}
+	return &m
+}
+
+// Scramblings whose points all missed the stone leave no NaN in the errors, and do not
+// count as known.
+func TestErrorsWithoutRays(t *testing.T) {
+	var s [scramblings]sums
+	if _, se := means(&s); se != (sums{}) {
+		t.Errorf("without a ray the errors are %v", se)
+	}
+	s[3][rayCount], s[3][Returned] = 2, 1
+	if mean, se := means(&s); mean[Returned] != 0.5 || se[Returned] != unknownError || se[Leaked] != unknownError {
+		t.Errorf("with one scrambling: %g ± %g", mean[Returned], se[Returned])
+	}
+	s[5][rayCount], s[5][Returned] = 2, 2
+	if mean, se := means(&s); mean[Returned] != 0.75 || math.Abs(se[Returned]-0.25) > 1e-15 {
+		t.Errorf("0.5 and 1 make %g ± %g, want 0.75 ± 0.25", mean[Returned], se[Returned])
+	}
+	if complete(&s) {
+		t.Error("two of the scramblings pass for all")
+	}
+	thin := Scene{Stone: solid(t, box(1, 1e-4, 1)), Material: plain(t, "stone", 1.5), Surroundings: Around(plain(t, "air", 1))}
+	r, err := newRun(thin, Settings{Pixels: 4, Samples: 1, Seed: 1, Workers: 1})
+	if err != nil {
+		t.Fatal(err)
+	}
+	for !r.finished() {
+		if err := r.pass(t.Context()); err != nil {
+			t.Fatal(err)
+		}
+	}
+	if !complete(&r.columns[0].scrambled) {
+		t.Error("a run ended before every scrambling met the stone")
+	}
+}

@@ -62,26 +62,53 @@ func (s *sums) ledger() Ledger {
 	return Ledger{s[Surface], s[Returned], s[Head], s[Leaked], s[Absorbed], s[Unresolved]}
 }
 
+// unknownError stands for the standard error of a mean of which nothing is known: as
+// large as a share can be.
+const unknownError = 1
+
 // means returns the mean over rays of every slot, and its standard error from the
-// spread of the means of independent scramblings. Both are 0 without a ray.
+// spread of the means of independent scramblings. Both are 0 without a ray. A scrambling
+// whose points have all missed the stone so far does not count; with one alone the errors
+// are unknownError.
 func means(scrambled *[scramblings]sums) (mean, standardError sums) {
 	var total sums
+	met := 0.0 // scramblings with a ray
 	for r := range scrambled {
 		total.add(&scrambled[r])
+		if scrambled[r][rayCount] > 0 {
+			met++
+		}
 	}
-	if total[rayCount] == 0 {
+	if met == 0 {
 		return sums{}, sums{}
 	}
 	for i := range mean {
 		mean[i] = total[i] / total[rayCount]
+		if met == 1 {
+			standardError[i] = unknownError
+			continue
+		}
 		var spread float64
 		for r := range scrambled {
+			if scrambled[r][rayCount] == 0 {
+				continue
+			}
 			d := scrambled[r][i]/scrambled[r][rayCount] - mean[i]
 			spread += d * d
 		}
-		standardError[i] = math.Sqrt(spread / (scramblings * (scramblings - 1)))
+		standardError[i] = math.Sqrt(spread / (met * (met - 1)))
 	}
 	return mean, standardError
+}
+
+// complete reports whether every scrambling has a ray.
+func complete(scrambled *[scramblings]sums) bool {
+	for r := range scrambled {
+		if !(scrambled[r][rayCount] > 0) {
+			return false
+		}
+	}
+	return true
 }
 
 // lit reads what is seen under the even light when what lies below the stone has
