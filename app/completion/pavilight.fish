@@ -23,7 +23,7 @@ complete -c pavilight -n '__fish_seen_subcommand_from look' -l wet -x -d 'Only t
 complete -c pavilight -n '__fish_seen_subcommand_from look' -l film -x -d 'A film on some tiers'
 complete -c pavilight -n '__fish_seen_subcommand_from look' -l ground -x -d 'Diffuse ground under the stone that sends back this share of light, 0 to 1'
 complete -c pavilight -n '__fish_seen_subcommand_from look' -l setting -x -d 'Diffuse wall right behind the pavilion that sends back this share of light; OPEN is the share of the pavilions depth left open at the culet'
-complete -c pavilight -n '__fish_seen_subcommand_from look' -l body -x -d 'Body colour #rrggbb as seen through so many mm of daylight; COLOUR/COLOUR for ordinary and extraordinary ray'
+complete -c pavilight -n '__fish_seen_subcommand_from look' -l body -x -d 'Body colour #rrggbb as seen through so many mm of daylight; COLOUR/COLOUR for ordinary and extraordinary ray, three for alpha, beta and gamma'
 complete -c pavilight -n '__fish_seen_subcommand_from look' -l axis -x -d 'How the crystal lies in the stone'
 complete -c pavilight -n '__fish_seen_subcommand_from look' -l light -x -a 'even overcast clear sun room lamps ring' -d 'The light'
 complete -c pavilight -n '__fish_seen_subcommand_from look' -l illuminant -x -a 'E A D65 C D50 D55 D75 FL2 FL7 FL11 LED-B1 LED-B2 LED-B3 LED-B4 LED-B5 LED-BH1 LED-RGB1 LED-V1 LED-V2 planck-2700 daylight-5000' -d 'Another spectrum for the light'
