@@ -46,6 +46,7 @@ func Run(ctx context.Context, o Options) error {
 		Migrations: map[string]bool{"fyneDo": os.Getenv(stagesVariable) != checkThreads},
 	})
 	makeFolders()
+	mendSettings(settingsFile())
 	a := app.NewWithID(appID)
 	a.SetIcon(fyne.NewStaticResource("pavilight.png", icon.PNG(iconPixels)))
 	if files, err := repository.ForScheme("file"); err == nil {
