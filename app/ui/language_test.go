@@ -1,10 +1,15 @@
 package ui
 
 import (
+	"strings"
 	"testing"
 
 	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/test"
+	"fyne.io/fyne/v2/theme"
+	"fyne.io/fyne/v2/widget"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/testdata"
 )
@@ -47,5 +52,71 @@ func TestTheLanguageIsChangedAtOnceAndRemembered(t *testing.T) {
 		if r.grid.maps[0][0].picture.Image == nil || r.solid.stone == nil || r.title.text == "" {
 			t.Errorf("in %q the maps, the solid or the title are empty", tt.code)
 		}
+	}
+}
+
+// cutWords returns what is written into less room than it takes, in what is seen of o.
+func cutWords(o fyne.CanvasObject) (cut []string) {
+	if !o.Visible() || o.Size().Width == 0 {
+		return nil
+	}
+	narrow := func(text string) {
+		const rounding = 0.5
+		if o.Size().Width < o.MinSize().Width-rounding {
+			cut = append(cut, text)
+		}
+	}
+	switch o := o.(type) {
+	case *fyne.Container:
+		for _, child := range o.Objects {
+			cut = append(cut, cutWords(child)...)
+		}
+	case *line:
+		if shown := test.WidgetRenderer(o).(*lineRenderer).text.Text; shown != o.text {
+			cut = append(cut, o.text)
+		}
+	case *wrapped:
+		fits := func(s string) bool {
+			return fyne.MeasureText(s, theme.Size(o.size), fyne.TextStyle{}).Width <= o.Size().Width
+		}
+		if o.high(o.Size().Width) > o.Size().Height+1 || len(breakLines(o.text, fits)) > mostLines {
+			cut = append(cut, o.text)
+		}
+	case *tipButton:
+		narrow(o.Text)
+	case *widget.Button:
+		narrow(o.Text)
+	case *widget.Check:
+		narrow(o.Text)
+	case *tierRow: // what it tells of a tier may take any length
+	case fyne.Widget:
+		for _, child := range test.WidgetRenderer(o).Objects() {
+			cut = append(cut, cutWords(child)...)
+		}
+	}
+	return cut
+}
+
+// TestNothingIsCutInAnyLanguage looks at the rooms, as wide as they first open and as
+// narrow as they must be usable.
+func TestNothingIsCutInAnyLanguage(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	r.refined(t)
+	for _, code := range words.Languages() {
+		r.setLanguage(code)
+		for _, size := range []fyne.Size{fyne.NewSize(usualWidth, usualHeight), fyne.NewSize(1024, 700)} {
+			r.win.Resize(size)
+			for room := range rooms {
+				r.enter(room)
+				r.drain()
+				for _, text := range cutWords(r.win.Content()) {
+					t.Errorf("%s at %v, %s: cut off is %q", code, size, room.name(), text)
+				}
+			}
+		}
+	}
+	r.enter(lookRoom)
+	if r.grid.meaning[0].setText(strings.Repeat("long ", 200)); len(cutWords(r.grid.meaning[0])) == 0 {
+		t.Error("a text that is far too long is not seen to be cut off")
 	}
 }

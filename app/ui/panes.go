@@ -103,9 +103,9 @@ func setVisible(o fyne.CanvasObject, visible bool) {
 
 // headerLayout sets the plan at the left, the rooms in the middle of what the plan
 // leaves, and the progress at the right. Where there is little room the progress is made
-// narrower, then the weight goes, which stands beside the stone, too, and then the title
-// is cut.
-type headerLayout struct{ title, weight *line }
+// narrower, then the weight goes, which stands beside the stone, too, then the index, and
+// then the title is cut.
+type headerLayout struct{ title, index, weight *line }
 
 // headerAir lies between the parts of the header, at the least.
 const headerAir = 12
@@ -125,9 +125,13 @@ func (h *headerLayout) Layout(objects []fyne.CanvasObject, size fyne.Size) {
 	doors, right := objects[1].MinSize(), objects[2].MinSize()
 	room := size.Width - doors.Width - right.Width - 2*headerAir // for the plan
 	h.title.most = 0
-	setVisible(h.weight, true)
-	if objects[0].MinSize().Width > room {
-		setVisible(h.weight, false)
+	for _, l := range []*line{h.weight, h.index} {
+		setVisible(l, true)
+	}
+	for _, l := range []*line{h.weight, h.index} {
+		if objects[0].MinSize().Width > room {
+			setVisible(l, false)
+		}
 	}
 	if over := objects[0].MinSize().Width - room; over > 0 {
 		const least = 40

@@ -134,7 +134,7 @@ func (w *window) tellWishes() fyne.CanvasObject {
 		gap(1), heading("Who tells whom"),
 		row("Letterhead", t.letterhead), row("From", author), row("To", client), notes,
 		gap(1), heading("How exactly it was measured"),
-		newLine(colourDim, theme.SizeNameCaptionText).with(w.words.Say("standard deviations in degrees; Enter takes them")), measured)
+		newLine(colourDim, theme.SizeNameCaptionText).with(w.words.Say("deviations in degrees; Enter takes them")), measured)
 	foot := container.New(layout.NewCustomPaddedVBoxLayout(6), container.New(&linesLayout{3}, t.notes), t.pdf, t.html)
 	return container.New(layout.NewCustomPaddedLayout(12, 14, 14, 8),
 		container.NewBorder(nil, container.New(layout.NewCustomPaddedLayout(0, 0, 0, 6), foot), nil, nil,

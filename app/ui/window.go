@@ -257,7 +257,7 @@ func (w *window) headerBar() fyne.CanvasObject {
 		doors.Add(d)
 	}
 	right := container.New(&progressLayout{}, w.state, w.progress, w.stop)
-	w.header, w.headed = container.New(&headerLayout{w.title, w.weight}, left, doors, right), [4]int{}
+	w.header, w.headed = container.New(&headerLayout{w.title, w.index, w.weight}, left, doors, right), [4]int{}
 	return container.NewStack(ground(colourPane), container.New(layout.NewCustomPaddedLayout(4, 4, 14, 10), w.header))
 }
 
