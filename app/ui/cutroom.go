@@ -35,6 +35,7 @@ type cutBench struct {
 	write    *widget.Button
 	print    *widget.Button
 	filming  bool
+	toPrint  bool // once it is laid out
 }
 
 func (w *window) buildCutRoom() fyne.CanvasObject {
@@ -262,6 +263,9 @@ func (w *window) refreshCut() {
 	}
 	w.refreshProgress()
 	w.tellReady(cutRoom, "sheet", c.cut.Ready() && c.cut.Picture != nil)
+	if c.toPrint && c.cut.Ready() {
+		w.printSheet()
+	}
 }
 
 // at is what the room is at, for the header.
@@ -314,8 +318,9 @@ func (w *window) writeSheetTo(path string) {
 // printSheet hands the sheet to the system's own viewer, which prints it.
 func (w *window) printSheet() {
 	w.enter(cutRoom)
-	if !w.cutting.cut.Ready() {
-		w.report("The sheet is not laid out yet; print it when it is.")
+	w.cutting.toPrint = !w.cutting.cut.Ready()
+	if w.cutting.toPrint {
+		w.report("The sheet is printed as soon as it is laid out.")
 		return
 	}
 	w.report("The sheet is handed to the system's viewer.")
@@ -325,6 +330,7 @@ func (w *window) printSheet() {
 			return
 		}
 		w.report("The sheet is open in the system's viewer: print it from there.")
+		w.tell("printed")
 	})
 }
 

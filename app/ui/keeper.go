@@ -256,6 +256,7 @@ func (w *window) offer(found []model.Recovered) {
 		w.take(work)
 	})
 	take.Importance = widget.HighImportance
+	w.asked = map[string]*widget.Button{"Take them up": take}
 	d = dialog.NewCustomWithoutButtons(w.words.Say("Unsaved work"), text, w.win)
 	d.SetButtons([]fyne.CanvasObject{
 		widget.NewButton(w.words.Say("Discard them"), next(func() { w.keeper.recovery.Discard(work) })),
@@ -263,7 +264,7 @@ func (w *window) offer(found []model.Recovered) {
 		take,
 	})
 	w.raise(d)
-	w.tell("offered")
+	w.tellOnceDrawn("offered")
 }
 
 // take takes unsaved work up.

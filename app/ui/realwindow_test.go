@@ -116,6 +116,7 @@ type program struct {
 	stages chan string
 
 	patience time.Duration // with one stage
+	began    time.Time     // when it was started
 
 	mu     sync.Mutex
 	log    strings.Builder
@@ -148,7 +149,7 @@ func (s *screen) start(theme brightness, width, height int, home string, args ..
 		os.WriteFile(filepath.Join(folder, "preferences.json"), []byte(settings), 0o600)); err != nil {
 		s.t.Fatal(err)
 	}
-	p := &program{t: s.t, screen: s, patience: patience, stages: make(chan string, 1000), places: map[string][2]string{}}
+	p := &program{t: s.t, screen: s, patience: patience, began: time.Now(), stages: make(chan string, 1000), places: map[string][2]string{}}
 	p.cmd = exec.Command(binary, args...)
 	p.cmd.Env = append(os.Environ(), "DISPLAY="+s.display, "WAYLAND_DISPLAY=", "HOME="+home, "XDG_CONFIG_HOME="+filepath.Join(home, ".config"),
 		"XDG_CACHE_HOME="+filepath.Join(home, ".cache"), "LANG=en_US.UTF-8", stagesVariable+"="+checkThreads)
@@ -211,6 +212,20 @@ func (p *program) said() string {
 	p.mu.Lock()
 	defer p.mu.Unlock()
 	return p.log.String()
+}
+
+// forget drops the stages that were told so far.
+func (p *program) forget() {
+	for {
+		select {
+		case _, open := <-p.stages:
+			if !open {
+				return
+			}
+		default:
+			return
+		}
+	}
 }
 
 // focus gives the window the keyboard: there is no window manager to do it.

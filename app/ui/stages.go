@@ -76,6 +76,26 @@ func (w *window) tellPlaces() {
 		at := w.app.Driver().AbsolutePositionForObject(o).AddXY(o.Size().Width*shareX, o.Size().Height/2)
 		fmt.Fprintf(os.Stderr, "PLACE %s %.0f %.0f\n", name, at.X*scale, at.Y*scale)
 	}
+	switch w.room { // what is in another has no place
+	case lookRoom:
+		w.tellLookPlaces(tell)
+	case tuneRoom:
+		tell("search", w.tuning.begin, 0.5)
+		tell("take", w.tuning.take, 0.5)
+	case cutRoom:
+		tell("save sheet", w.cutting.write, 0.5)
+	case tellRoom:
+		tell("save report", w.telling.pdf, 0.5)
+	}
+	for r, d := range w.doors {
+		tell("room "+string(room(r).name()), d, 0.5)
+	}
+	for name, b := range w.asked {
+		tell("answer "+name, b, 0.5)
+	}
+}
+
+func (w *window) tellLookPlaces(tell func(name string, o fyne.CanvasObject, shareX float32)) {
 	for _, r := range w.list.rows {
 		if r.field != nil {
 			tell("field "+r.row.Name, r.field, 0.5)
@@ -93,24 +113,12 @@ func (w *window) tellPlaces() {
 	for i, c := range w.grid.row {
 		tell(fmt.Sprintf("row %d", i), c, 0.5)
 	}
-	tell("solid", w.solid, 0.5)
-	tell("strip", w.grid.strip, 0.5)
 	for j, c := range w.grid.media {
 		tell(fmt.Sprintf("medium %d", j), c, 0.5)
 	}
-	switch w.room {
-	case tuneRoom:
-		tell("search", w.tuning.begin, 0.5)
-		tell("take", w.tuning.take, 0.5)
-	case cutRoom:
-		tell("save sheet", w.cutting.write, 0.5)
-	case tellRoom:
-		tell("save report", w.telling.pdf, 0.5)
-	}
-	for r, d := range w.doors {
-		tell("room "+string(room(r).name()), d, 0.5)
-	}
-	for name, b := range w.asked {
-		tell("answer "+name, b, 0.5)
+	tell("solid", w.solid, 0.5)
+	tell("strip", w.grid.strip, 0.5)
+	if w.rayBox.Visible() {
+		tell("beside", w.beside.chooser, 0.5)
 	}
 }

@@ -27,6 +27,7 @@ type tipLayer struct {
 	delay time.Duration
 	over  fyne.CanvasObject // the control that the pointer rests on; nil for none
 	visit int               // counts the controls that it came to
+	shown func()            // told when a tip came; may be nil
 }
 
 func newTipLayer(do func(func()), in *words.Words) *tipLayer {
@@ -95,6 +96,9 @@ func (l *tipLayer) show(over fyne.CanvasObject, words string) {
 	l.plate.Show()
 	l.text.Show()
 	l.box.Refresh() // what was hidden has no canvas yet that it could ask for a repaint
+	if l.shown != nil {
+		l.shown()
+	}
 }
 
 // tip is what a control tells of itself when the pointer rests on it; the zero tip

@@ -78,16 +78,17 @@ type window struct {
 	message *line
 	light   *line
 
-	menu    menus
-	files   fileMemory
-	keeper  keeper
-	closed  bool
-	ledgers throttle
-	told    *model.Frame // whose numbers the ledger shows
-	stages  map[string]bool
-	ready   map[room]bool             // whose answer was told of, until the next is asked for
-	dialogs []dialog.Dialog           // that are open, the top one last
-	asked   map[string]*widget.Button // answers of the question that is open, by their label
+	menu     menus
+	files    fileMemory
+	keeper   keeper
+	closed   bool
+	ledgers  throttle
+	told     *model.Frame // whose numbers the ledger shows
+	stages   map[string]bool
+	pointing bool                      // the pointer is over a map
+	ready    map[room]bool             // whose answer was told of, until the next is asked for
+	dialogs  []dialog.Dialog           // that are open, the top one last
+	asked    map[string]*widget.Button // answers of the question that is open, by their label
 }
 
 // newWindow builds the window around a bench; nothing is shown yet. system is the locale of
@@ -119,6 +120,7 @@ func newWindow(a fyne.App, doc *model.Document, system string, do func(func()), 
 
 func (w *window) build() {
 	w.tips = newTipLayer(w.do, w.words)
+	w.tips.shown = func() { w.tell("tip") }
 	w.title = newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, "").bold()
 	w.material = newChooser(theme.SizeNameText, nil)
 	w.material.opens = w.chooseMaterial
@@ -333,7 +335,11 @@ func gap(width float32) fyne.CanvasObject {
 
 // enter opens a room.
 func (w *window) enter(r room) {
+	if r != w.room {
+		w.win.Canvas().Unfocus() // what was typed there is taken; keys are the new room's
+	}
 	w.room = r
+	w.cutting.toPrint = false
 	w.app.Preferences().SetInt(roomKey, int(r))
 	for k := range rooms {
 		w.doors[k].setOpen(k == r)
@@ -418,6 +424,12 @@ func (w *window) onLook(c model.Change) {
 	case model.PointerChanged:
 		w.grid.refreshPointer()
 		w.refreshPointer()
+		if over := w.bench.Look.Pointer.Over; over != w.pointing {
+			w.pointing = over
+			if over {
+				w.tell("pointed")
+			}
+		}
 	}
 }
 
@@ -516,7 +528,7 @@ func (w *window) refreshRay() {
 		return
 	}
 	w.showRayLists(r)
-	w.once("followed")
+	w.tellOnceDrawn("followed")
 }
 
 func (w *window) refreshLight() {
