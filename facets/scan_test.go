@@ -758,3 +758,51 @@ func BenchmarkReadScan200k(b *testing.B) {
 		})
 	}
 }
+
+// Meshes that no scanner makes, in which every triangle is in everybody's way, end in a
+// fault or a closed solid, in a memory and time that follow their size.
+func TestHostileMeshes(t *testing.T) {
+	const n = 3000
+	rng := rand.New(rand.NewPCG(11, 12))
+	corner := func() string {
+		return fmt.Sprintf("v %g %g %g\n", 10*rng.Float64(), 10*rng.Float64(), 10*rng.Float64())
+	}
+	any := func(of int) int { return 1 + rng.IntN(of) }
+	for name, line := range map[string]func(i int) (points, face string){
+		"triangles apart": func(i int) (string, string) {
+			return corner() + corner() + corner(), fmt.Sprintf("f %d %d %d\n", 3*i+1, 3*i+2, 3*i+3)
+		},
+		"one edge of all": func(i int) (string, string) { return corner(), fmt.Sprintf("f 1 2 %d\n", i+1) },
+		"a flat tangle": func(i int) (string, string) {
+			return fmt.Sprintf("v %g %g 0\n", rng.Float64(), rng.Float64()), fmt.Sprintf("f %d %d %d\n", any(n), any(n), any(n))
+		},
+		"a tangle":          func(i int) (string, string) { return corner(), fmt.Sprintf("f %d %d %d\n", any(n), any(n), any(n)) },
+		"the same triangle": func(i int) (string, string) { return corner(), "f 1 2 3\n" },
+		"a long line": func(i int) (string, string) {
+			return fmt.Sprintf("v %d 0 0\n", i), fmt.Sprintf("f %d %d %d\n", any(n), any(n), any(n))
+		},
+	} {
+		var points, faces strings.Builder
+		for i := range n {
+			p, f := line(i)
+			points.WriteString(p)
+			faces.WriteString(f)
+		}
+		text := points.String() + faces.String()
+		budget.Hold(t, scanMemory(len(text)), func() {
+			sc, err := ReadScan(strings.NewReader(text), "mesh.obj", ScanOptions{})
+			var s *Stone
+			if err == nil {
+				s, err = sc.Stone(ScanPlacement{AllowHull: true})
+			}
+			var fault *Fault
+			var faults Faults
+			switch {
+			case err == nil && !(s.Volume() > 0):
+				t.Errorf("%s: a solid without volume", name)
+			case err != nil && !errors.As(err, &fault) && !errors.As(err, &faults):
+				t.Errorf("%s: %v is no fault", name, err)
+			}
+		})
+	}
+}

@@ -253,3 +253,28 @@ func TestLambert(t *testing.T) {
 	agree(t, "mean square of the cosine", second, math.Sqrt(1.0/12/throws), 0.5, 0, 4, source)
 	agree(t, "mean direction aside", along.plus(-along.dot(n), n).length(), math.Sqrt(0.5/throws), 0, 0, 4, "the same all round")
 }
+
+// TestHeadAboveDish: the head is judged where light leaves the dish. Light that comes
+// straight down through a table and is reflected by a bottom slanted by α goes up at 2α,
+// and by Snell's law at asin(n sin 2α) in the air whatever liquid lies between: 9.53° for
+// n = 1.9 and α = 2.5°, where in water it is 7.13°. Later reflections go wider.
+func TestHeadAboveDish(t *testing.T) {
+	sin, cos := math.Sincos(2.5 * math.Pi / 180)
+	planes := append(box(1, 1, 1)[:5], facets.Plane{Normal: mgl64.Vec3{sin, 0, -cos}, Distance: 0.5, Side: facets.Pavilion})
+	scene := Scene{Stone: solid(t, planes), Material: plain(t, "stone", 1.9),
+		Surroundings: []Surrounding{{Medium: plain(t, "water", 1.333), Dish: true}}}
+	// What the table mirrors comes back straight, and counts within any head.
+	r := math.Pow((1.9-1.333)/(1.9+1.333), 2) * math.Pow(1-math.Pow(0.333/2.333, 2), 2)
+	for _, row := range []struct {
+		degrees float64
+		in      bool
+	}{{7, false}, {8.5, false}, {9.4, false}, {9.7, true}} {
+		c := &mustRun(t, scene, Settings{Head: facets.Angle(row.degrees) * facets.Degree, Pixels: 8, Samples: 8, Seed: 1}).Columns[0]
+		if got := c.Ledger.Head - r; row.in != (got > 0.01) || !row.in && math.Abs(got) > 1e-3 {
+			t.Errorf("within %g° of the eye come %g, wanted any: %v (Snell's law at both surfaces)", row.degrees, got, row.in)
+		}
+		if near, far := c.From[0]-r, c.From[1]; math.Abs(near) > 1e-3 || !(far > 0.01) {
+			t.Errorf("from 0 to 5° come %g and to 10° %g (Snell's law at both surfaces)", near, far)
+		}
+	}
+}

@@ -104,7 +104,13 @@ func (m fileMemory) words(system string) *words.Words {
 	return words.In(system)
 }
 
-func (m fileMemory) textScale() float32 { return float32(m.prefs.FloatWithFallback(scaleKey, 1)) }
+// textScale is how much larger than drawn text is.
+func (m fileMemory) textScale() float32 {
+	if v := float32(m.prefs.FloatWithFallback(scaleKey, 1)); v >= leastScale && v <= mostScale { // false for NaN
+		return v
+	}
+	return 1
+}
 
 // pane reports whether a side pane is shown: as the user decided, else as usual.
 func (m fileMemory) pane(key string, usual bool) bool {

@@ -236,10 +236,15 @@ func (w *window) setTheme(b brightness) {
 	w.refreshMenu()
 }
 
+// The scales of text that are offered.
+const (
+	leastScale = 0.8
+	mostScale  = 1.6
+)
+
 // scaleText makes the text larger or smaller by a tenth.
 func (w *window) scaleText(steps float32) {
-	const least, most = 0.8, 1.6
-	scale := min(most, max(least, w.files.textScale()+steps/10))
+	scale := min(mostScale, max(leastScale, w.files.textScale()+steps/10))
 	w.app.Preferences().SetFloat(scaleKey, float64(scale))
 	w.applyTheme()
 }

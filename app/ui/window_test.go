@@ -467,6 +467,10 @@ func TestPreferencesThatWereDamagedAreNotBelieved(t *testing.T) {
 		if got := m.windowSize().Width; got != usualWidth {
 			t.Errorf("a remembered width of %v gives %v", v, got)
 		}
+		a.Preferences().SetFloat(scaleKey, v)
+		if got := m.textScale(); got != 1 {
+			t.Errorf("a remembered scale of text of %v gives %v", v, got)
+		}
 	}
 	a.Preferences().SetString(themeKey, "plaid")
 	if m.brightness() != asSystem {
