@@ -2,7 +2,6 @@ package model
 
 import (
 	"bytes"
-	"errors"
 	"io"
 	"math"
 	"os"
@@ -344,28 +343,3 @@ func (b *Bench) Select(tier string) {
 // Troubles says why the present plan cannot be shown, one fault a line; empty when
 // it is shown.
 func (b *Bench) Troubles() []string { return InWords(b.words, b.Look.Trouble) }
-
-// InWords returns what an error says, one fault a line, nil for none. Files are
-// named without their folders, which the window has no room for.
-func InWords(w *words.Words, err error) []string {
-	if err == nil {
-		return nil
-	}
-	var faults facets.Faults
-	if errors.As(err, &faults) {
-		lines := make([]string, len(faults))
-		for i, f := range faults {
-			short := *f
-			short.File = filepath.Base(f.File)
-			lines[i] = short.Error()
-		}
-		return lines
-	}
-	var one *facets.Fault
-	if errors.As(err, &one) {
-		short := *one
-		short.File = filepath.Base(one.File)
-		return []string{short.Error()}
-	}
-	return strings.Split(w.Error(err), "\n")
-}

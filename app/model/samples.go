@@ -61,3 +61,13 @@ func SampleGroups(files []string) []SampleGroup {
 	}
 	return slices.DeleteFunc(groups, func(g SampleGroup) bool { return len(g.Samples) == 0 })
 }
+
+// SampleNames are the labels of the bundled plans.
+func SampleNames() []words.Key {
+	return []words.Key{
+		"Round", "Round chequer", "Round dome", "Round eleven", "Round nine", "Round seven", "Round star", "Round step",
+		"Oval", "Oval keel", "Oval mixed", "Pear", "Marquise", "Marquise keel", "Cushion", "Cushion long", "Square brilliant",
+		"Square step", "Barrow", "Octagon", "Rectangle", "Step", "Trapezoid", "Triangle", "Triangle step", "Trillion", "Hexagon",
+		"Pentagon", "Twist", "Freeform", "Half moon", "Kite", "Shield", "Prism", "Rod",
+	}
+}

@@ -2,8 +2,10 @@ package model
 
 import (
 	"io/fs"
+	"slices"
 	"testing"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/testdata"
 )
@@ -22,6 +24,9 @@ func TestSampleGroups(t *testing.T) {
 			t.Errorf("%s holds %d plans", g.Outline, len(g.Samples))
 		}
 		for _, s := range g.Samples {
+			if !slices.Contains(SampleNames(), words.Key(s.Label)) {
+				t.Errorf("%q has no words of its own in German and French: add it to SampleNames", s.Label)
+			}
 			if seen[s.File] {
 				t.Errorf("%s stands twice", s.File)
 			}

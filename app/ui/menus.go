@@ -128,7 +128,7 @@ func (w *window) sampleItems() []*fyne.MenuItem {
 		group := w.item(g.Outline, nil, nil)
 		group.ChildMenu = fyne.NewMenu("")
 		for _, s := range g.Samples {
-			group.ChildMenu.Items = append(group.ChildMenu.Items, fyne.NewMenuItem(s.Label, func() {
+			group.ChildMenu.Items = append(group.ChildMenu.Items, fyne.NewMenuItem(w.words.Among(model.SampleNames(), s.Label), func() {
 				w.unlessUnsaved("Save them before you open another plan?", func() { w.openSample(s.File) })
 			}))
 		}

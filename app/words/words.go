@@ -8,6 +8,7 @@ import (
 	"embed"
 	"fmt"
 	"slices"
+	"strconv"
 	"strings"
 	"time"
 	"unicode"
@@ -122,6 +123,41 @@ func (w *Words) Say(k Key, args ...any) string {
 func (w *Words) Among(keys []Key, text string) string {
 	if k := Key(text); slices.Contains(keys, k) {
 		return w.Say(k)
+	}
+	return text
+}
+
+// Like says a text that comes from a package which speaks English, where one of keys is
+// what it was made from: each %s of a key stands for anything. Another stands as it is.
+func (w *Words) Like(keys []Key, text string) string {
+	for _, k := range keys {
+		parts := strings.Split(k.English(), "%s")
+		rest, ok := strings.CutPrefix(text, parts[0])
+		var args []any
+		for i, part := range parts[1:] {
+			if !ok {
+				break
+			}
+			end := strings.Index(rest, part)
+			if i == len(parts)-2 && strings.HasSuffix(rest, part) { // the last takes what is left
+				end = len(rest) - len(part)
+			}
+			if ok = end >= 0; ok {
+				args = append(args, w.filled(rest[:end]))
+				rest = rest[end+len(part):]
+			}
+		}
+		if ok && rest == "" {
+			return w.Say(k, args...)
+		}
+	}
+	return text
+}
+
+// filled gives a number that stands in a text the mark of the language.
+func (w *Words) filled(text string) string {
+	if _, err := strconv.ParseFloat(text, 64); err == nil {
+		return w.Decimal(text)
 	}
 	return text
 }

@@ -124,6 +124,26 @@ func TestSay(t *testing.T) {
 	}
 }
 
+func TestTextsFromElsewhere(t *testing.T) {
+	german := catalogOf("de", map[Key]string{
+		"%s never touches the stone":            "%s berührt den Stein nie",
+		"at index %s the facet misses %s by %s": "bei %s verfehlt sie %s um %s",
+		"cut it first":                          "zuerst schleifen",
+	})
+	keys := []Key{"%s never touches the stone", "at index %s the facet misses %s by %s", "cut it first"}
+	for _, row := range []struct{ text, want string }{
+		{"P1@6, P1@18 never touches the stone", "P1@6, P1@18 berührt den Stein nie"},
+		{"at index 12.5 the facet misses P1 by 0.2 mm", "bei 12,5 verfehlt sie P1 um 0.2 mm"},
+		{"cut it first", "zuerst schleifen"},
+		{"cut it first, then", "cut it first, then"},
+		{"P1 never touches the stone here", "P1 never touches the stone here"},
+	} {
+		if got := german.Like(keys, row.text); got != row.want {
+			t.Errorf("%q is said as %q, want %q", row.text, got, row.want)
+		}
+	}
+}
+
 func TestErrorsAreToldInTheLanguage(t *testing.T) {
 	german := catalogOf("de", map[Key]string{"%s is gone (%v)": "%s ist weg (%v)", "no room": "kein Platz"})
 	inner := Errorf("no room")
