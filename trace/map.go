@@ -123,6 +123,9 @@ func (m *Map) PathLengths() []float32 {
 
 // filled returns sum over weight of every pixel; both are of a cell.
 func (m *Map) filled(sum, weight func(cell int) float32) []float32 {
+	if m.grid == nil {
+		return nil // the zero Map has no pixels
+	}
 	mean, gaps := make([]float32, len(m.cells)), false
 	for c := range m.cells {
 		if !m.grid.inside[c] && m.cells[c].rays == 0 {
