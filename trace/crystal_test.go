@@ -187,7 +187,7 @@ func polarised(rng *rand.Rand, d vec) beam {
 func TestCrystalKeepsAllLight(t *testing.T) {
 	rng := rand.New(rand.NewPCG(4, 4))
 	const source = "light is neither made nor lost"
-	total, evanescent := 0, 0
+	total, evanescent, givenUp := 0, 0, 0
 	for range 40000 {
 		c, v, m := meeting(rng)
 		d := unit(rng)
@@ -200,6 +200,9 @@ func TestCrystalKeepsAllLight(t *testing.T) {
 		near(t, "what is mirrored stays polarised", math.Hypot(e.mirrored.q,
 			math.Hypot(e.mirrored.u, e.mirrored.v)), e.mirrored.i, 1e-11,
 			"a mirror does not depolarise")
+		if e.power == [2]float64{} && e.waves[0].flux+e.waves[1].flux > 0 {
+			givenUp++
+		}
 		for i, w := range e.waves {
 			if e.power[i] == 0 {
 				continue
@@ -215,7 +218,9 @@ func TestCrystalKeepsAllLight(t *testing.T) {
 			} else { // rounding counts over the square of the cosine
 				near(t, "from inside, grazing", all, 1, singular, source)
 			}
-			if s.through.i == 0 {
+			if f := newFacetFrame(u, w.k); s.through.i == 0 && f.size < m {
+				givenUp++ // the equations failed
+			} else if s.through.i == 0 {
 				total++
 				if s.back[0].flux == 0 || s.back[1].flux == 0 {
 					evanescent++
@@ -225,6 +230,9 @@ func TestCrystalKeepsAllLight(t *testing.T) {
 	}
 	if total < 1000 || evanescent < 100 {
 		t.Errorf("only %d total reflections, %d with a reflected wave missing, were tried", total, evanescent)
+	}
+	if givenUp > 4 {
+		t.Errorf("%d facets were taken as mirrors since the shares did not sum to 1", givenUp)
 	}
 }
 
