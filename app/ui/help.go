@@ -58,7 +58,7 @@ func (w *window) diagnostics() string {
 	return w.words.Say("%s\nwindow %.0f x %.0f, scale %.2f, text %.1f, theme %s\n"+
 		"processors %d, tracing on %d\nmaps of %d pixels\nplan %q: %s\nstate: %s\n",
 		version.Current().String(), size.Width, size.Height, w.win.Canvas().Scale(), w.files.textScale(), w.files.brightness(),
-		runtime.NumCPU(), s.Workers, s.Pixels, w.bench.Doc.Plan().Name, strings.Join(w.bench.Troubles(), "; "), w.bench.Look.Status())
+		runtime.NumCPU(), s.Workers, s.Pixels, w.bench.Doc.Plan().Name, strings.Join(w.bench.Troubles(), "; "), w.bench.Look.Status()) + w.logged.String()
 }
 
 func (w *window) copyDiagnostics() {

@@ -337,6 +337,26 @@ func TestRealWindow(t *testing.T) {
 	p.click("map 0 0")
 	p.until("followed")
 	s.shot("ray")
+	// A second ray beside it, in water; true colour, in one column under another light; a tip.
+	p.click("beside")
+	s.do("key", "Down", "Down", "Return")
+	p.until("followed")
+	s.shot("beside")
+	p.click("row 0")
+	s.do("key", "Up", "Return") // true colour is the last
+	p.until("refined")
+	p.click("medium 1")
+	s.do("key", "Up", "Right", "Down", "Return") // the last opens the lights, of which even is the first
+	p.until("refined")
+	x, y = p.place("solid")
+	s.do("mousemove", x, y)
+	x, y = p.place("room Tune")
+	s.do("mousemove", x, y)
+	p.until("tip")
+	s.shot("lights")
+	p.click("row 0")
+	s.do("key", "Down", "Return")
+
 	p.click("field P1")
 	s.do("type", "--delay", "40", "40")
 	s.do("key", "Return")

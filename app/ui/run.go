@@ -45,6 +45,7 @@ func Run(ctx context.Context, o Options) error {
 		// All of our goroutines come in by post; the toolkit checks that where it is asked to.
 		Migrations: map[string]bool{"fyneDo": os.Getenv(stagesVariable) != checkThreads},
 	})
+	logged := takeToolkitLog()
 	makeFolders()
 	mendSettings(settingsFile())
 	a := app.NewWithID(appID)
@@ -84,6 +85,7 @@ func Run(ctx context.Context, o Options) error {
 		})
 	})
 	defer stop()
+	w.logged = logged
 	endWatch := beginWatch(post)
 	w.win.ShowAndRun()
 	endWatch()

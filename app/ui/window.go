@@ -85,6 +85,7 @@ type window struct {
 	ledgers  throttle
 	told     *model.Frame // whose numbers the ledger shows
 	stages   map[string]bool
+	logged   *toolkitLog               // nil without one
 	pointing bool                      // the pointer is over a map
 	ready    map[room]bool             // whose answer was told of, until the next is asked for
 	dialogs  []dialog.Dialog           // that are open, the top one last
