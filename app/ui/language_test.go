@@ -104,6 +104,7 @@ func TestNothingIsCutInAnyLanguage(t *testing.T) {
 	r.refined(t)
 	for _, code := range words.Languages() {
 		r.setLanguage(code)
+		r.fault.Show() // as where a plan makes no stone
 		for _, size := range []fyne.Size{fyne.NewSize(usualWidth, usualHeight), fyne.NewSize(1024, 700)} {
 			r.win.Resize(size)
 			for room := range rooms {

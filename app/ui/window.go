@@ -277,7 +277,7 @@ func (w *window) troubleBox() *fyne.Container {
 	heading.setText(w.words.Say("This plan makes no stone"))
 	warning := widget.NewIcon(theme.NewErrorThemedResource(theme.WarningIcon()))
 	keeps := newLine(colourDim, theme.SizeNameCaptionText)
-	keeps.setText(w.words.Say("The maps show the last stone that it made."))
+	keeps.setText(w.words.Say("The maps show the last stone it made."))
 	scroll := container.NewVScroll(w.troubles)
 	scroll.SetMinSize(fyne.NewSize(100, 110))
 	return container.NewStack(ground(theme.ColorNameInputBackground),
