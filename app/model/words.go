@@ -76,11 +76,12 @@ func (l *Look) Heading(column int) Heading {
 
 // LedgerRow is one line of the ledger under the maps.
 type LedgerRow struct {
-	Name  string
-	Entry trace.Quantity
-	Main  bool // what one looks for first
-	Area  bool // an area of the picture, not one of the six entries
-	Cells []LedgerCell
+	Name    string
+	Meaning words.Key // in a few words
+	Entry   trace.Quantity
+	Main    bool // what one looks for first
+	Area    bool // an area of the picture, not one of the six entries
+	Cells   []LedgerCell
 }
 
 // LedgerCell is one number of the ledger, with its standard error.
@@ -100,7 +101,7 @@ func (l *Look) Ledger() []LedgerRow {
 	columns := l.Frame.Result.Columns
 	var rows []LedgerRow
 	for _, q := range append(Quantities(), trace.Unresolved) {
-		row := LedgerRow{Name: l.words.Say(QuantityName(q)), Entry: q, Main: q == trace.Returned || q == trace.Leaked}
+		row := LedgerRow{Name: l.words.Say(QuantityName(q)), Meaning: QuantityMeaning(q), Entry: q, Main: q == trace.Returned || q == trace.Leaked}
 		matters := q != trace.Unresolved && q != trace.Absorbed
 		for i := range columns {
 			c := l.cell(q.Of(columns[i].Ledger), q.Of(columns[i].StandardError))
@@ -111,7 +112,9 @@ func (l *Look) Ledger() []LedgerRow {
 			rows = append(rows, row)
 		}
 	}
-	leaky, window := LedgerRow{Name: l.words.Say("Leaky area"), Area: true}, LedgerRow{Name: l.words.Say("Window|one sees through"), Area: true}
+	leaky, window := LedgerRow{Name: l.words.Say("Leaky area"), Area: true,
+		Meaning: "share of the rays of which more than half leaves downward in the end"}, LedgerRow{Name: l.words.Say("Window|one sees through"), Area: true,
+		Meaning: "share of the rays of which more than half leaves downward where they first meet the pavilion: there one sees through"}
 	for i := range columns {
 		leaky.Cells = append(leaky.Cells, l.cell(columns[i].LeakyArea, columns[i].LeakyError))
 		window.Cells = append(window.Cells, l.cell(columns[i].WindowedArea, columns[i].WindowedError))

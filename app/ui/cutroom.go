@@ -123,7 +123,7 @@ func (w *window) cutWishes() fyne.CanvasObject {
 	c.print = widget.NewButton(w.words.Say("Print…"), w.printSheet)
 	c.notes = newWrapped(colourDim, theme.SizeNameCaptionText)
 	row := func(name words.Key, o fyne.CanvasObject) fyne.CanvasObject {
-		return container.New(&formRow{}, label(name), o)
+		return container.New(&formRow{}, w.tips.laidOver(label(name), tipOf(name)), o)
 	}
 	wishes := container.New(layout.NewCustomPaddedVBoxLayout(5), heading("Sheet for the bench"),
 		row("Paper", paper), row("Machine", c.machine), row("Indices", order), row("Other gears", c.gears),

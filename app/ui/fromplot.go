@@ -5,6 +5,7 @@ import (
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
+	"fyne.io/fyne/v2/driver/desktop"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
 
@@ -18,6 +19,7 @@ const fromBins = 18
 // eye, a line a surrounding, with the viewer's head shaded.
 type fromPlot struct {
 	widget.BaseWidget
+	tip    tip
 	words  *words.Words
 	curves [columns][fromBins]float64
 	names  [columns]string
@@ -51,6 +53,15 @@ func (p *fromPlot) top() (share float64, word string) {
 	}
 	return 1, "1"
 }
+
+// MouseIn waits for the tip.
+func (p *fromPlot) MouseIn(*desktop.MouseEvent) { p.tip.enter(p) }
+
+// MouseMoved is not used.
+func (p *fromPlot) MouseMoved(*desktop.MouseEvent) {}
+
+// MouseOut takes the tip away.
+func (p *fromPlot) MouseOut() { p.tip.leave() }
 
 // CreateRenderer builds the frame, the curves and their names.
 func (p *fromPlot) CreateRenderer() fyne.WidgetRenderer {

@@ -17,12 +17,14 @@ type ledger struct {
 	box   *fyne.Container
 	lines []*ledgerLine
 	shown int
-	away  bool // none is to be seen
+	away  bool      // none is to be seen
+	tips  *tipLayer // nil before the window has one
 }
 
 type ledgerLine struct {
 	swatch *canvas.Rectangle
 	name   *line
+	tip    *tipArea // over the name: what it means
 	value  [columns]*line
 	error  [columns]*line
 }
@@ -37,6 +39,7 @@ func (l *ledger) show(rows []model.LedgerRow) (changed bool) {
 	for k, row := range rows {
 		t := l.lines[k]
 		t.name.setText(row.Name)
+		t.tip.tip = tip{l.tips, row.Meaning}
 		t.swatch.FillColor = entryColour(row.Entry)
 		if row.Area {
 			t.swatch.FillColor = color.Transparent
@@ -72,7 +75,7 @@ func (l *ledger) setVisible(visible bool) {
 }
 
 func (l *ledger) newLine() *ledgerLine {
-	t := &ledgerLine{swatch: canvas.NewRectangle(color.Transparent), name: newLine(theme.ColorNameForeground, theme.SizeNameText)}
+	t := &ledgerLine{swatch: canvas.NewRectangle(color.Transparent), name: newLine(theme.ColorNameForeground, theme.SizeNameText), tip: newTipArea(tip{})}
 	t.swatch.CornerRadius = 2
 	for j := range columns {
 		t.value[j] = newLine(theme.ColorNameForeground, theme.SizeNameText)
@@ -95,7 +98,7 @@ func (t *ledgerLine) embolden(main bool) {
 }
 
 func (t *ledgerLine) objects() []fyne.CanvasObject {
-	all := []fyne.CanvasObject{t.swatch, t.name}
+	all := []fyne.CanvasObject{t.swatch, t.name, t.tip}
 	for j := range columns {
 		all = append(all, t.value[j], t.error[j])
 	}
@@ -119,6 +122,7 @@ func (l *ledger) layout(left, top, gutter float32, x func(int) float32, edge flo
 		const swatch = 9
 		place(t.swatch, left, y+(high-swatch)/2, swatch, swatch)
 		place(t.name, left+swatch+6, y, gutter-swatch-8, high)
+		place(t.tip, left, y, gutter-2, high)
 		for j := range columns {
 			wide := fyne.MeasureText("0.0000", theme.TextSize(), fyne.TextStyle{Bold: true}).Width
 			place(t.value[j], x(j), y, wide+2, high)

@@ -75,7 +75,7 @@ func (w *window) tellWishes() fyne.CanvasObject {
 		return newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, w.words.Say(s)).bold()
 	}
 	row := func(name words.Key, o fyne.CanvasObject) fyne.CanvasObject {
-		return container.New(&formRow{}, label(name), o)
+		return container.New(&formRow{}, w.tips.laidOver(label(name), tipOf(name)), o)
 	}
 	choose := func(options []string, now int, chosen func(k int)) *widget.Select {
 		s := widget.NewSelect(options, nil)

@@ -7,6 +7,7 @@ import (
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
+	"fyne.io/fyne/v2/driver/desktop"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
 
@@ -20,6 +21,7 @@ const tiltStops = 9
 // same quantity as a curve for each surrounding. A click tilts the large maps.
 type tiltStrip struct {
 	widget.BaseWidget
+	tip tip
 
 	look    *model.Look
 	choose  func(stop int)
@@ -102,6 +104,15 @@ func (s *tiltStrip) FocusGained() { s.focused = true; s.Refresh() }
 
 // FocusLost hides the frame.
 func (s *tiltStrip) FocusLost() { s.focused = false; s.Refresh() }
+
+// MouseIn waits for the tip.
+func (s *tiltStrip) MouseIn(*desktop.MouseEvent) { s.tip.enter(s) }
+
+// MouseMoved is not used.
+func (s *tiltStrip) MouseMoved(*desktop.MouseEvent) {}
+
+// MouseOut takes the tip away.
+func (s *tiltStrip) MouseOut() { s.tip.leave() }
 
 // CreateRenderer builds the small maps, their degrees and the curves.
 func (s *tiltStrip) CreateRenderer() fyne.WidgetRenderer {

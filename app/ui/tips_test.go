@@ -7,8 +7,10 @@ import (
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/test"
 
+	"pavilight/app/model"
 	"pavilight/app/words"
 	"pavilight/testdata"
+	"pavilight/trace"
 )
 
 func TestTipsComeAndGo(t *testing.T) {
@@ -30,6 +32,9 @@ func TestTipsComeAndGo(t *testing.T) {
 		{"door", r.doors[cutRoom], tipRoom(cutRoom)},
 		{"angle", r.row(t, "P1").field, tipAngle},
 		{"slider", r.row(t, "P2").slider, tipSlider},
+		{"ledger", r.grid.ledger.lines[1].tip, model.QuantityMeaning(trace.Leaked)},
+		{"strip", r.grid.strip, tipStrip},
+		{"curve", r.from, tipFrom},
 	} {
 		over(tt.over)
 		r.until(t, "the tip of the "+tt.name, r.tips.plate.Visible)

@@ -35,8 +35,29 @@ const (
 	tipMachine  = "The machine whose numbers the sheet prints; yours can be described"
 	tipOther    = "A stone to set beside this one, on the same scales"
 
+	tipStrip = "A click on a small map tilts the large ones; the arrow keys go from one to the next"
+	tipFrom  = "A line for each surrounding: how much of what comes back comes from each angle. What lies in the shaded part the viewer's head takes"
+
+	tipLeast = "The least that the search tries"
+	tipMost  = "The most that the search tries"
+	tipLimit = "Empty: nothing is asked for"
+
 	tipLetGo = "Follow no ray any more (Esc)"
 )
+
+// tipOf returns the tip on the name of a row in the rooms where something is asked for;
+// empty where the name says enough.
+func tipOf(name words.Key) words.Key {
+	return map[words.Key]words.Key{
+		"First":       "What the search makes as good as it can",
+		"And":         "A second goal, weighed against the first",
+		"counting":    "How many times as much as the first the second goal counts",
+		"Indices":     "In which order the facets of a tier stand on the sheet",
+		"Other gears": "The indices are printed for these gears, too; Enter takes them",
+		"For":         "Plain words for a client, more numbers for a colleague",
+		"Pictured in": "The lights of the two pictures in true colour",
+	}[name]
+}
 
 // tipRoom says what a room is for.
 func tipRoom(r room) words.Key {

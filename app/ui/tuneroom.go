@@ -105,7 +105,7 @@ func (w *window) tuneQuestion() fyne.CanvasObject {
 		return container.New(layout.NewCustomPaddedVBoxLayout(4), o...)
 	}
 	row := func(name words.Key, o fyne.CanvasObject) *fyne.Container {
-		return container.New(&formRow{}, label(name), o)
+		return container.New(&formRow{}, w.tips.laidOver(label(name), tipOf(name)), o)
 	}
 	var tasks []string
 	for _, task := range model.TuneTasks() {
@@ -261,6 +261,7 @@ func (w *window) limitRow(row func(words.Key, fyne.CanvasObject) *fyne.Container
 		return nil
 	}
 	field.trouble = w.say
+	field.tip = tip{w.tips, tipLimit}
 	field.show(get())
 	return row(name, container.NewBorder(nil, nil, container.NewGridWrap(fyne.NewSize(74, field.MinSize().Height), field), nil,
 		newLine(colourDim, theme.SizeNameText).with(w.words.Say(unit))))
@@ -583,6 +584,7 @@ func (w *window) showChoices() {
 					return t.tune.SetLimits(i, low, high)
 				}
 				pair[k].trouble = w.say
+				pair[k].tip = tip{w.tips, [...]words.Key{tipLeast, tipMost}[k]}
 			}
 			t.fields = append(t.fields, pair)
 			box := func(f *numberField) fyne.CanvasObject {

@@ -205,6 +205,9 @@ func (w *window) giveTips() {
 	give(&w.head.tip, tipHead)
 	give(&w.shines.tip, tipLight)
 	give(&w.grid.reach.tip, tipRange)
+	give(&w.grid.strip.tip, tipStrip)
+	give(&w.from.tip, tipFrom)
+	w.grid.ledger.tips = w.tips
 	for r := range rooms {
 		give(&w.doors[r].tip, tipRoom(r))
 	}
