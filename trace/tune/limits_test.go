@@ -92,6 +92,35 @@ func TestLimits(t *testing.T) {
 
 var glance = effort{rays: 1000}
 
+// What a stone from a piece of rough weighs is its share of the rough's own weight, at 0.2 g
+// a carat.
+func TestWeightFromRough(t *testing.T) {
+	p := *roundProblem(t)
+	p.Limits = Limits{}
+	p.Goal.Aims = []Aim{{Measure: Weight, Weight: 1}}
+	p.Rough = &facets.Rough{Shape: facets.Box, Size: mgl64.Vec3{12, 12, 9}}
+	stone, err := p.Pattern.Build(nil, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	fit, err := p.Rough.Fit(stone)
+	if err != nil {
+		t.Fatal(err)
+	}
+	j, err := newJudge(&p)
+	if err != nil {
+		t.Fatal(err)
+	}
+	got, err := j.try(context.Background(), j.start(), glance)
+	if err != nil || !got.Seen {
+		t.Fatalf("%+v, %v", got, err)
+	}
+	want := 12 * 12 * 9 * fit.Yield * p.Material.Density / 200
+	if math.Abs(got.Measures[0]/want-1) > 1e-9 {
+		t.Errorf("weighs %g ct, want %g", got.Measures[0], want)
+	}
+}
+
 // The outline and the ratio of length to width are kept where that is asked for.
 func TestKeepRatio(t *testing.T) {
 	plan := samplePlan(t, "step.toml")
