@@ -97,6 +97,14 @@ func stressIndices() map[float64][]float64 {
 	}
 }
 
+// stressSamples are rays a pixel.
+func stressSamples() int {
+	if *long {
+		return 64
+	}
+	return 8
+}
+
 // finite fails the test where a number anywhere in a value is none. Pictures are NaN
 // outside the stone, and are asked for their fields.
 func finite(t *testing.T, what string, v reflect.Value) {
@@ -191,7 +199,7 @@ func TestStressedNumbers(t *testing.T) {
 			for _, tilt := range []float64{0, 44.3, 89.9} {
 				what := fmt.Sprintf("%s of %g at %g°", name, n, tilt)
 				s := Settings{View: View{Tilt: facets.Angle(tilt) * facets.Degree, Turn: 13 * facets.Degree}, Head: 10 * facets.Degree,
-					Pixels: 8, Samples: 1, Seed: 3}
+					Pixels: 16, Samples: stressSamples(), Seed: 3}
 				fast := mustRun(t, scene, s)
 				sane(t, what, fast, stressSum32)
 				s.exact = true
@@ -223,7 +231,7 @@ func TestStressedNumbers(t *testing.T) {
 // An edge so sharp that 10,000 bounces are not enough says so, and loses nothing.
 func TestSharpestEdge(t *testing.T) {
 	scene := Scene{Stone: wedge(t, 0.005), Material: plain(t, "stone", 1.77), Surroundings: Around(plain(t, "air", 1))}
-	r := mustRun(t, scene, Settings{View: View{Tilt: 89.9 * facets.Degree}, Pixels: 8, Samples: 1, Seed: 3, exact: true})
+	r := mustRun(t, scene, Settings{View: View{Tilt: 89.9 * facets.Degree}, Pixels: 16, Samples: 64, Seed: 3, exact: true})
 	sane(t, "an edge of 0.005°", r, stressSum64)
 	if u := r.Columns[0].Ledger.Unresolved; !(u > stressUnresolved) {
 		t.Errorf("%.3g unresolved: is the bound of bounces gone?", u)
@@ -259,7 +267,7 @@ func TestStressedSurroundings(t *testing.T) {
 			for i := range scene.Coatings {
 				scene.Coatings[i].Tiers = []string{""}
 			}
-			r := mustRun(t, scene, Settings{View: View{Tilt: 30 * facets.Degree}, Head: 10 * facets.Degree, Pixels: 4, Samples: 1, Seed: 3})
+			r := mustRun(t, scene, Settings{View: View{Tilt: 30 * facets.Degree}, Head: 10 * facets.Degree, Pixels: 16, Samples: stressSamples(), Seed: 3})
 			sane(t, what+" with the "+name, r, stressSum32) // the kernel knows body colour
 			for k := range r.Columns {
 				if u := r.Columns[k].Ledger.Unresolved; !(u <= stressUnresolved) {
