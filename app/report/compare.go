@@ -138,7 +138,7 @@ func (c *composer) sideBySide(all []*Findings, names []string) {
 		}
 		c.add(bars(c.words, title, rows))
 	}
-	c.add(text{words: c.say("bar.note", "errors", c.errorKind(all[0])), small: true})
+	c.add(c.barNote(all...))
 }
 
 // kinds returns the names of the materials of stones, each once.

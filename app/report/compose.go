@@ -5,6 +5,7 @@ import (
 	"image/color"
 	"image/draw"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -212,7 +213,16 @@ func (c *composer) where(f *Findings) {
 			back: c.with(col.Ledger.Returned, col.StandardError.Returned, col.spreadOf(trace.Returned)),
 		})
 	}
-	c.add(bars(c.words, c.say("bar.title"), rows), text{words: c.say("bar.note", "errors", c.errorKind(f)), small: true})
+	c.add(bars(c.words, c.say("bar.title"), rows), c.barNote(f))
+}
+
+// barNote explains the bars: the liquids where there are any.
+func (c *composer) barNote(all ...*Findings) text {
+	said := []string{c.say("bar.note", "errors", c.errorKind(all[0]))}
+	if slices.ContainsFunc(all, func(f *Findings) bool { return f.Dish != nil }) {
+		said = append(said, c.say("bar.around"))
+	}
+	return text{words: strings.Join(append(said, c.say("bar.grade")), " "), small: true}
 }
 
 // errorKind says which errors stand beside a figure.
@@ -537,7 +547,17 @@ func (c *composer) measures(f *Findings) {
 	row("measure.culet", mm(m.CuletWidthMM), percent(m.CuletPercent))
 	parts := []part{heading{words: c.say("measures")}, t}
 	var lines []string
-	lines = append(lines, c.say("measure.facets", "count", strconv.Itoa(len(f.Solid.Facets))))
+	rim := 0
+	for i := range f.Solid.Facets {
+		if f.Solid.Facets[i].Side == facets.Girdle {
+			rim++
+		}
+	}
+	key, fill := "measure.facets", []string{"count", strconv.Itoa(len(f.Solid.Facets))}
+	if rim > 0 {
+		key, fill = key+".girdle", append(fill, "girdle", strconv.Itoa(rim))
+	}
+	lines = append(lines, c.say(key, fill...))
 	if p := f.Proportions; p != nil {
 		lines = append(lines, c.say("measure.given", "values", c.given(p)))
 	}

@@ -411,6 +411,34 @@ func TestWithoutStatedErrors(t *testing.T) {
 	}
 }
 
+// TestBarNoteSpeaksOfWhatIsShown: of liquids only where there are any, and that nothing is
+// graded in every language.
+func TestBarNoteSpeaksOfWhatIsShown(t *testing.T) {
+	wet := findings(t, other)
+	dry := *wet
+	dry.Dish = nil // as with --in air
+	for _, language := range Languages() {
+		w, err := wordsOf(language)
+		if err != nil {
+			t.Fatal(err)
+		}
+		c := composer{words: w}
+		for _, of := range []struct {
+			name    string
+			stones  []*Findings
+			liquids bool
+		}{{"in air", []*Findings{&dry}, false}, {"in water too", []*Findings{wet}, true}, {"compared", []*Findings{&dry, wet}, true}} {
+			note := c.barNote(of.stones...).words
+			if got := strings.Contains(note, w["bar.around"]); got != of.liquids {
+				t.Errorf("%s, %s: the note speaks of liquids: %v, want %v\n%s", language, of.name, got, of.liquids, note)
+			}
+			if !strings.HasSuffix(note, w["bar.grade"]) {
+				t.Errorf("%s, %s: the note does not end with %q", language, of.name, w["bar.grade"])
+			}
+		}
+	}
+}
+
 // TestMeasuringSpread holds the drawn spread against the law of propagation of uncertainty
 // (JCGM 100:2008, equation 10) where errors are so small that all is straight. 64 draws
 // know a standard deviation to 1/√126 = 9 %; four times that, and as much again for
