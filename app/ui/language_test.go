@@ -1,6 +1,8 @@
 package ui
 
 import (
+	"fmt"
+	"math"
 	"strings"
 	"testing"
 
@@ -119,5 +121,22 @@ func TestNothingIsCutInAnyLanguage(t *testing.T) {
 	r.enter(lookRoom)
 	if r.grid.meaning[0].setText(strings.Repeat("long ", 200)); len(cutWords(r.grid.meaning[0])) == 0 {
 		t.Error("a text that is far too long is not seen to be cut off")
+	}
+}
+
+// TestPlaceWordsNameTheSide: nobody has to read "right" with a minus before it.
+func TestPlaceWordsNameTheSide(t *testing.T) {
+	for _, of := range []struct {
+		x, y float64
+		want string
+	}{
+		{1.5, 0.25, "1.50 mm right, 0.25 mm up from the middle"},
+		{1.5, -0.25, "1.50 mm right, 0.25 mm down from the middle"},
+		{-1.5, 0.25, "1.50 mm left, 0.25 mm up from the middle"},
+		{-1.5, -0.25, "1.50 mm left, 0.25 mm down from the middle"},
+	} {
+		if got := fmt.Sprintf(placeWords(of.x, of.y).English(), math.Abs(of.x), math.Abs(of.y)); got != of.want {
+			t.Errorf("%g, %g: %q, want %q", of.x, of.y, got, of.want)
+		}
 	}
 }

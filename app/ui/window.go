@@ -575,7 +575,20 @@ func (w *window) refreshPointer() {
 		w.report("")
 		return
 	}
-	w.report("%+.2f mm right, %+.2f mm up from the middle", x, y)
+	w.report(placeWords(x, y), math.Abs(x), math.Abs(y))
+}
+
+// placeWords says on which side of the map's middle a place lies.
+func placeWords(x, y float64) words.Key {
+	switch {
+	case x < 0 && y < 0:
+		return "%.2f mm left, %.2f mm down from the middle"
+	case x < 0:
+		return "%.2f mm left, %.2f mm up from the middle"
+	case y < 0:
+		return "%.2f mm right, %.2f mm down from the middle"
+	}
+	return "%.2f mm right, %.2f mm up from the middle"
 }
 
 // runState is what a room is at: shown in the header, and what its Stop button ends.
