@@ -30,7 +30,7 @@ func (f *Fault) Error() string {
 		fmt.Fprintf(&b, "tier %q: ", shorten(f.Tier))
 	}
 	if f.Field != "" {
-		b.WriteString(f.Field)
+		b.WriteString(shorten(f.Field))
 		if f.Got != "" {
 			fmt.Fprintf(&b, " %q", shorten(f.Got))
 		}
