@@ -103,7 +103,8 @@ func octant(i int) *region {
 	const half = directions / 2
 	sx, sy, sz := octantSigns(i)
 	// Its first cell touches the middle of its half of the map.
-	o := &region{step: 1.0 / half, side: half, first: half*directions + half, right: sx, up: sy * directions}
+	// In float32 too, a list must name both facets that tie at an edge.
+	o := &region{step: 1.0 / half, side: half, first: half*directions + half, right: sx, up: sy * directions, rounding: 2e-5}
 	if sx < 0 {
 		o.first--
 	}

@@ -42,7 +42,8 @@ type region struct {
 	first      int                           // the number of its first cell
 	right, up  int                           // how much larger that of the next is, along u and along v
 	outside    func(u, v, size float64) bool // whether a part of it is not wanted; nil if all is
-	margin     float64                       // by how much a function must be larger to count as larger
+	rounding   float64                       // share of the largest value by which a function must be larger to count as larger
+	margin     float64                       // that value
 	stack      []uint16                      // lists of the quarters being worked on
 	survivors  []corners                     // scratch
 }
@@ -59,7 +60,7 @@ func (c *cells) fill(fs []plane2, sq *region) {
 		all[i] = uint16(i)
 		sq.margin = max(sq.margin, math.Abs(f.a)+(math.Abs(f.b)+math.Abs(f.c))*(math.Abs(sq.u)+math.Abs(sq.v)+size))
 	}
-	sq.margin *= 1e-14 // some rounding errors of the largest value in the square
+	sq.margin *= sq.rounding
 	c.quarter(fs, sq, all, 0, 0, sq.side)
 }
 

@@ -40,6 +40,8 @@ type kernel struct {
 
 	cut  float64 // a path ends when no more than this is left in it
 	most int     // and at this bounce
+
+	single bool // rays in doubt are left as they are
 }
 
 // list is two of the facets that can be the largest in a direction, and where more
@@ -144,5 +146,6 @@ func newKernel(t *tracer) *kernel {
 	return k
 }
 
-// cutAt ends paths where no more than least is left, or at so many facets.
-func (k *kernel) cutAt(least float64, most int) { k.cut, k.most = least, most }
+// cutAt ends paths where no more than least is left, or at so many facets. Nothing is
+// followed again in float64, which knows no such cut.
+func (k *kernel) cutAt(least float64, most int) { k.cut, k.most, k.single = least, most, true }

@@ -210,7 +210,7 @@ DATA f00000000<>+28(SB)/4, $0x00000000
 GLOBL f00000000<>(SB), RODATA|NOPTR, $32
 
 // func settle(t uintptr, f uintptr)
-// Requires: AVX, FMA3
+// Requires: AVX, AVX2, FMA3
 TEXT ·settle(SB), NOSPLIT, $0-16
 	// One step toward the exit, by every facet that can be it; notes who has arrived.
 	MOVQ t+0(FP), AX
@@ -223,138 +223,196 @@ next:
 	MOVQ    tables_planes+0(AX), SI
 	VMOVUPS group_s+0(CX), Y0
 	VMOVUPS group_facet+0(CX), Y1
+	VMOVUPS group_doubt+0(CX), Y2
 
 pair:
 	MOVL           group_list+0(CX), DI
 	MOVWLZX        (BX)(DI*8), DI
-	VBROADCASTF128 (SI)(DI*8), Y2
+	VBROADCASTF128 (SI)(DI*8), Y3
 	MOVL           group_list+16(CX), DI
 	MOVWLZX        (BX)(DI*8), DI
-	VINSERTF128    $0x01, (SI)(DI*8), Y2, Y2
+	VINSERTF128    $0x01, (SI)(DI*8), Y3, Y3
 	MOVL           group_list+4(CX), DI
 	MOVWLZX        (BX)(DI*8), DI
-	VBROADCASTF128 (SI)(DI*8), Y3
+	VBROADCASTF128 (SI)(DI*8), Y4
 	MOVL           group_list+20(CX), DI
 	MOVWLZX        (BX)(DI*8), DI
-	VINSERTF128    $0x01, (SI)(DI*8), Y3, Y3
+	VINSERTF128    $0x01, (SI)(DI*8), Y4, Y4
 	MOVL           group_list+8(CX), DI
 	MOVWLZX        (BX)(DI*8), DI
-	VBROADCASTF128 (SI)(DI*8), Y4
+	VBROADCASTF128 (SI)(DI*8), Y5
 	MOVL           group_list+24(CX), DI
 	MOVWLZX        (BX)(DI*8), DI
-	VINSERTF128    $0x01, (SI)(DI*8), Y4, Y4
+	VINSERTF128    $0x01, (SI)(DI*8), Y5, Y5
 	MOVL           group_list+12(CX), DI
 	MOVWLZX        (BX)(DI*8), DI
-	VBROADCASTF128 (SI)(DI*8), Y5
+	VBROADCASTF128 (SI)(DI*8), Y6
 	MOVL           group_list+28(CX), DI
 	MOVWLZX        (BX)(DI*8), DI
-	VINSERTF128    $0x01, (SI)(DI*8), Y5, Y5
-	VUNPCKLPS      Y3, Y2, Y6
-	VUNPCKLPS      Y5, Y4, Y7
-	VUNPCKHPS      Y3, Y2, Y2
-	VUNPCKHPS      Y5, Y4, Y3
-	VUNPCKLPD      Y7, Y6, Y4
-	VUNPCKHPD      Y7, Y6, Y5
-	VUNPCKLPD      Y3, Y2, Y6
-	VUNPCKHPD      Y3, Y2, Y2
-	VMULPS         group_dx+0(CX), Y4, Y3
-	VFMADD231PS    group_dy+0(CX), Y5, Y3
-	VFMADD231PS    group_dz+0(CX), Y6, Y3
-	VMOVUPS        f3f800000<>+0(SB), Y7
-	VFNMADD231PS   group_x+0(CX), Y4, Y7
-	VFNMADD231PS   group_y+0(CX), Y5, Y7
-	VFNMADD231PS   group_z+0(CX), Y6, Y7
-	VDIVPS         Y3, Y7, Y4
-	VMAXPS         f00000000<>+0(SB), Y4, Y4
-	VCMPPS         $0x11, Y0, Y4, Y5
-	VCMPPS         $0x1e, f00000000<>+0(SB), Y3, Y3
-	VANDPS         Y3, Y5, Y3
-	VBLENDVPS      Y3, Y4, Y0, Y0
-	VBLENDVPS      Y3, Y2, Y1, Y1
+	VINSERTF128    $0x01, (SI)(DI*8), Y6, Y6
+	VUNPCKLPS      Y4, Y3, Y7
+	VUNPCKLPS      Y6, Y5, Y8
+	VUNPCKHPS      Y4, Y3, Y3
+	VUNPCKHPS      Y6, Y5, Y4
+	VUNPCKLPD      Y8, Y7, Y5
+	VUNPCKHPD      Y8, Y7, Y6
+	VUNPCKLPD      Y4, Y3, Y7
+	VUNPCKHPD      Y4, Y3, Y3
+	VMULPS         group_dx+0(CX), Y5, Y4
+	VFMADD231PS    group_dy+0(CX), Y6, Y4
+	VFMADD231PS    group_dz+0(CX), Y7, Y4
+	VMOVUPS        f3f800000<>+0(SB), Y8
+	VFNMADD231PS   group_x+0(CX), Y5, Y8
+	VFNMADD231PS   group_y+0(CX), Y6, Y8
+	VFNMADD231PS   group_z+0(CX), Y7, Y8
+	VFNMADD231PS   Y0, Y4, Y8
+	VANDPS         magnitude<>+0(SB), Y8, Y8
+	VMOVUPS        f360637bd<>+0(SB), Y9
+	VCVTDQ2PS      group_bounces+0(CX), Y10
+	VFMADD231PS    f348637bd<>+0(SB), Y10, Y9
+	VCMPPS         $0x11, Y9, Y8, Y8
+	VCMPPS         $0x1e, f00000000<>+0(SB), Y4, Y4
+	VANDPS         Y4, Y8, Y4
+	VPCMPEQD       Y3, Y1, Y8
+	VANDNPS        Y4, Y8, Y4
+	VORPS          Y4, Y2, Y2
+	VMULPS         group_dx+0(CX), Y5, Y4
+	VFMADD231PS    group_dy+0(CX), Y6, Y4
+	VFMADD231PS    group_dz+0(CX), Y7, Y4
+	VMOVUPS        f3f800000<>+0(SB), Y8
+	VFNMADD231PS   group_x+0(CX), Y5, Y8
+	VFNMADD231PS   group_y+0(CX), Y6, Y8
+	VFNMADD231PS   group_z+0(CX), Y7, Y8
+	VDIVPS         Y4, Y8, Y5
+	VMAXPS         f00000000<>+0(SB), Y5, Y5
+	VCMPPS         $0x11, Y0, Y5, Y6
+	VCMPPS         $0x1e, f00000000<>+0(SB), Y4, Y4
+	VANDPS         Y4, Y6, Y4
+	VBLENDVPS      Y4, Y5, Y0, Y0
+	VBLENDVPS      Y4, Y3, Y1, Y1
 	XORL           R9, R9
 	MOVL           group_list+0(CX), R8
 	MOVWLZX        2(BX)(R8*8), DI
 	MOVWLZX        4(BX)(R8*8), R8
 	MOVL           R8, group_list+0(CX)
 	ORL            R8, R9
-	VBROADCASTF128 (SI)(DI*8), Y2
+	VBROADCASTF128 (SI)(DI*8), Y3
 	MOVL           group_list+16(CX), R8
 	MOVWLZX        2(BX)(R8*8), DI
 	MOVWLZX        4(BX)(R8*8), R8
 	MOVL           R8, group_list+16(CX)
 	ORL            R8, R9
-	VINSERTF128    $0x01, (SI)(DI*8), Y2, Y2
+	VINSERTF128    $0x01, (SI)(DI*8), Y3, Y3
 	MOVL           group_list+4(CX), R8
 	MOVWLZX        2(BX)(R8*8), DI
 	MOVWLZX        4(BX)(R8*8), R8
 	MOVL           R8, group_list+4(CX)
 	ORL            R8, R9
-	VBROADCASTF128 (SI)(DI*8), Y3
+	VBROADCASTF128 (SI)(DI*8), Y4
 	MOVL           group_list+20(CX), R8
 	MOVWLZX        2(BX)(R8*8), DI
 	MOVWLZX        4(BX)(R8*8), R8
 	MOVL           R8, group_list+20(CX)
 	ORL            R8, R9
-	VINSERTF128    $0x01, (SI)(DI*8), Y3, Y3
+	VINSERTF128    $0x01, (SI)(DI*8), Y4, Y4
 	MOVL           group_list+8(CX), R8
 	MOVWLZX        2(BX)(R8*8), DI
 	MOVWLZX        4(BX)(R8*8), R8
 	MOVL           R8, group_list+8(CX)
 	ORL            R8, R9
-	VBROADCASTF128 (SI)(DI*8), Y4
+	VBROADCASTF128 (SI)(DI*8), Y5
 	MOVL           group_list+24(CX), R8
 	MOVWLZX        2(BX)(R8*8), DI
 	MOVWLZX        4(BX)(R8*8), R8
 	MOVL           R8, group_list+24(CX)
 	ORL            R8, R9
-	VINSERTF128    $0x01, (SI)(DI*8), Y4, Y4
+	VINSERTF128    $0x01, (SI)(DI*8), Y5, Y5
 	MOVL           group_list+12(CX), R8
 	MOVWLZX        2(BX)(R8*8), DI
 	MOVWLZX        4(BX)(R8*8), R8
 	MOVL           R8, group_list+12(CX)
 	ORL            R8, R9
-	VBROADCASTF128 (SI)(DI*8), Y5
+	VBROADCASTF128 (SI)(DI*8), Y6
 	MOVL           group_list+28(CX), R8
 	MOVWLZX        2(BX)(R8*8), DI
 	MOVWLZX        4(BX)(R8*8), R8
 	MOVL           R8, group_list+28(CX)
 	ORL            R8, R9
-	VINSERTF128    $0x01, (SI)(DI*8), Y5, Y5
-	VUNPCKLPS      Y3, Y2, Y6
-	VUNPCKLPS      Y5, Y4, Y7
-	VUNPCKHPS      Y3, Y2, Y2
-	VUNPCKHPS      Y5, Y4, Y3
-	VUNPCKLPD      Y7, Y6, Y4
-	VUNPCKHPD      Y7, Y6, Y5
-	VUNPCKLPD      Y3, Y2, Y6
-	VUNPCKHPD      Y3, Y2, Y2
-	VMULPS         group_dx+0(CX), Y4, Y3
-	VFMADD231PS    group_dy+0(CX), Y5, Y3
-	VFMADD231PS    group_dz+0(CX), Y6, Y3
-	VMOVUPS        f3f800000<>+0(SB), Y7
-	VFNMADD231PS   group_x+0(CX), Y4, Y7
-	VFNMADD231PS   group_y+0(CX), Y5, Y7
-	VFNMADD231PS   group_z+0(CX), Y6, Y7
-	VDIVPS         Y3, Y7, Y4
-	VMAXPS         f00000000<>+0(SB), Y4, Y4
-	VCMPPS         $0x11, Y0, Y4, Y5
-	VCMPPS         $0x1e, f00000000<>+0(SB), Y3, Y3
-	VANDPS         Y3, Y5, Y3
-	VBLENDVPS      Y3, Y4, Y0, Y0
-	VBLENDVPS      Y3, Y2, Y1, Y1
+	VINSERTF128    $0x01, (SI)(DI*8), Y6, Y6
+	VUNPCKLPS      Y4, Y3, Y7
+	VUNPCKLPS      Y6, Y5, Y8
+	VUNPCKHPS      Y4, Y3, Y3
+	VUNPCKHPS      Y6, Y5, Y4
+	VUNPCKLPD      Y8, Y7, Y5
+	VUNPCKHPD      Y8, Y7, Y6
+	VUNPCKLPD      Y4, Y3, Y7
+	VUNPCKHPD      Y4, Y3, Y3
+	VMULPS         group_dx+0(CX), Y5, Y4
+	VFMADD231PS    group_dy+0(CX), Y6, Y4
+	VFMADD231PS    group_dz+0(CX), Y7, Y4
+	VMOVUPS        f3f800000<>+0(SB), Y8
+	VFNMADD231PS   group_x+0(CX), Y5, Y8
+	VFNMADD231PS   group_y+0(CX), Y6, Y8
+	VFNMADD231PS   group_z+0(CX), Y7, Y8
+	VFNMADD231PS   Y0, Y4, Y8
+	VANDPS         magnitude<>+0(SB), Y8, Y8
+	VMOVUPS        f360637bd<>+0(SB), Y9
+	VCVTDQ2PS      group_bounces+0(CX), Y10
+	VFMADD231PS    f348637bd<>+0(SB), Y10, Y9
+	VCMPPS         $0x11, Y9, Y8, Y8
+	VCMPPS         $0x1e, f00000000<>+0(SB), Y4, Y4
+	VANDPS         Y4, Y8, Y4
+	VPCMPEQD       Y3, Y1, Y8
+	VANDNPS        Y4, Y8, Y4
+	VORPS          Y4, Y2, Y2
+	VMULPS         group_dx+0(CX), Y5, Y4
+	VFMADD231PS    group_dy+0(CX), Y6, Y4
+	VFMADD231PS    group_dz+0(CX), Y7, Y4
+	VMOVUPS        f3f800000<>+0(SB), Y8
+	VFNMADD231PS   group_x+0(CX), Y5, Y8
+	VFNMADD231PS   group_y+0(CX), Y6, Y8
+	VFNMADD231PS   group_z+0(CX), Y7, Y8
+	VDIVPS         Y4, Y8, Y5
+	VMAXPS         f00000000<>+0(SB), Y5, Y5
+	VCMPPS         $0x11, Y0, Y5, Y6
+	VCMPPS         $0x1e, f00000000<>+0(SB), Y4, Y4
+	VANDPS         Y4, Y6, Y4
+	VBLENDVPS      Y4, Y5, Y0, Y0
+	VBLENDVPS      Y4, Y3, Y1, Y1
 	VMOVAPS        Y0, Y0
 	VMOVAPS        Y1, Y1
 	TESTL          R9, R9
 	JNE            pair
-	VCMPPS         $0x00, group_s+0(CX), Y0, Y2
-	VMOVUPS        Y2, group_arrived+0(CX)
+	VCMPPS         $0x00, group_s+0(CX), Y0, Y3
+	VMOVUPS        Y3, group_arrived+0(CX)
 	VMOVUPS        Y0, group_s+0(CX)
 	VMOVUPS        Y1, group_facet+0(CX)
+	VMOVUPS        Y2, group_doubt+0(CX)
 	LEAQ           group__size+0(CX), CX
 	DECQ           DX
 	JNE            next
 	VZEROUPPER
 	RET
+
+DATA f360637bd<>+0(SB)/4, $0x360637bd
+DATA f360637bd<>+4(SB)/4, $0x360637bd
+DATA f360637bd<>+8(SB)/4, $0x360637bd
+DATA f360637bd<>+12(SB)/4, $0x360637bd
+DATA f360637bd<>+16(SB)/4, $0x360637bd
+DATA f360637bd<>+20(SB)/4, $0x360637bd
+DATA f360637bd<>+24(SB)/4, $0x360637bd
+DATA f360637bd<>+28(SB)/4, $0x360637bd
+GLOBL f360637bd<>(SB), RODATA|NOPTR, $32
+
+DATA f348637bd<>+0(SB)/4, $0x348637bd
+DATA f348637bd<>+4(SB)/4, $0x348637bd
+DATA f348637bd<>+8(SB)/4, $0x348637bd
+DATA f348637bd<>+12(SB)/4, $0x348637bd
+DATA f348637bd<>+16(SB)/4, $0x348637bd
+DATA f348637bd<>+20(SB)/4, $0x348637bd
+DATA f348637bd<>+24(SB)/4, $0x348637bd
+DATA f348637bd<>+28(SB)/4, $0x348637bd
+GLOBL f348637bd<>(SB), RODATA|NOPTR, $32
 
 // func depart(t uintptr, f uintptr)
 // Requires: AVX, FMA3
@@ -1120,17 +1178,33 @@ next:
 	VMOVUPS  group_through+0(DX), Y0
 	VMOVUPS  group_up+0(DX), Y1
 	VCMPPS   $0x12, f00000000<>+0(SB), Y1, Y2
-	VCMPPS   $0x1e, flight_headCos+0(CX), Y1, Y1
-	VANDPS   Y0, Y2, Y3
-	VADDPS   group_leaked+0(DX), Y3, Y3
-	VMOVUPS  Y3, group_leaked+0(DX)
-	VANDPS   Y0, Y1, Y3
-	VADDPS   group_head+0(DX), Y3, Y3
-	VMOVUPS  Y3, group_head+0(DX)
-	VORPS    Y1, Y2, Y1
-	VANDNPS  Y0, Y1, Y1
-	VADDPS   group_returned+0(DX), Y1, Y1
-	VMOVUPS  Y1, group_returned+0(DX)
+	VCMPPS   $0x1e, flight_headCos+0(CX), Y1, Y3
+	VANDPS   Y0, Y2, Y4
+	VADDPS   group_leaked+0(DX), Y4, Y4
+	VMOVUPS  Y4, group_leaked+0(DX)
+	VANDPS   Y0, Y3, Y4
+	VADDPS   group_head+0(DX), Y4, Y4
+	VMOVUPS  Y4, group_head+0(DX)
+	VORPS    Y3, Y2, Y3
+	VANDNPS  Y0, Y3, Y3
+	VADDPS   group_returned+0(DX), Y3, Y3
+	VMOVUPS  Y3, group_returned+0(DX)
+	VMOVUPS  f37a7c5ac<>+0(SB), Y3
+	VANDPS   magnitude<>+0(SB), Y1, Y4
+	VCMPPS   $0x11, Y3, Y4, Y4
+	VSUBPS   flight_headCos+0(CX), Y1, Y1
+	VANDPS   magnitude<>+0(SB), Y1, Y1
+	VCMPPS   $0x11, Y3, Y1, Y1
+	VORPS    Y1, Y4, Y1
+	VCMPPS   $0x1e, f00000000<>+0(SB), Y0, Y4
+	VANDPS   Y4, Y1, Y1
+	VMOVUPS  group_g2+0(DX), Y4
+	VANDPS   magnitude<>+0(SB), Y4, Y4
+	VCMPPS   $0x11, Y3, Y4, Y3
+	VANDPS   group_arrived+0(DX), Y3, Y3
+	VORPS    Y3, Y1, Y1
+	VORPS    group_doubt+0(DX), Y1, Y1
+	VMOVUPS  Y1, group_doubt+0(DX)
 	VMOVUPS  flight_pavilion+0(CX), Y1
 	VPCMPGTD group_facet+0(DX), Y1, Y1
 	VANDPS   group_arrived+0(DX), Y1, Y1
@@ -1147,6 +1221,16 @@ next:
 	JNE      next
 	VZEROUPPER
 	RET
+
+DATA f37a7c5ac<>+0(SB)/4, $0x37a7c5ac
+DATA f37a7c5ac<>+4(SB)/4, $0x37a7c5ac
+DATA f37a7c5ac<>+8(SB)/4, $0x37a7c5ac
+DATA f37a7c5ac<>+12(SB)/4, $0x37a7c5ac
+DATA f37a7c5ac<>+16(SB)/4, $0x37a7c5ac
+DATA f37a7c5ac<>+20(SB)/4, $0x37a7c5ac
+DATA f37a7c5ac<>+24(SB)/4, $0x37a7c5ac
+DATA f37a7c5ac<>+28(SB)/4, $0x37a7c5ac
+GLOBL f37a7c5ac<>(SB), RODATA|NOPTR, $32
 
 // func bin(t uintptr, f uintptr)
 // Requires: AVX, AVX2, FMA3

@@ -53,12 +53,13 @@ type group struct {
 	absorbed               eight     // likewise
 	unmet, windowed        eightInts // -1 where the pavilion is not met yet, where one sees through it
 	bounces                eightInts // so far
+	doubt                  eightInts // -1 where rounding may have chosen the way
 	die                    eightInts // of the end-game
 	bins                   eightInts // where the ray's bins stand in tables.bins, in bytes
 
 	wide [8]float64 // scratch
 	over int32      // bit i is set if the path of ray i is over
-	_    [7]int32   // to a whole number of cache lines
+	_    [15]int32  // to a whole number of cache lines
 }
 
 // tables is what the passes look up, and how much of the flight is in use.
@@ -85,6 +86,10 @@ type errand struct {
 
 	entrances []entrance // by facet, the last
 
+	recall  bool    // rays are called back of which rounding may have chosen the way:
+	doubted []int32 // their numbers,
+	again   []ray   // and themselves, of negative weight, after all others
+
 	flight *flight
 	bins   []eyeBins       // by column
 	ray    [inFlight]int32 // number of the ray in each place
@@ -93,12 +98,26 @@ type errand struct {
 }
 
 // follow does what tracer.followAll promises, but for adding up the ledgers.
+//
+// A ray that comes so close to an edge that float32 cannot tell which facet is next is
+// followed again in float64, and what it had counted is taken back: it flies once more,
+// for it flies alike every time, and weighs less than nothing. That is where float64
+// knows all there is to know: under the even light, from afar, in a clear stone.
 func (k *kernel) follow(rays []ray, out []Ledger, lit []float64, columns []sums) {
-	e := &errand{
-		kernel: k, rays: rays, out: out, lit: lit, columns: columns,
-		entrances: make([]entrance, len(k.planes)),
-		flight:    k.newFlight(), bins: make([]eyeBins, len(columns)),
+	coloured := slices.ContainsFunc(rays, func(r ray) bool { return r.absorb > 0 })
+	e := &errand{kernel: k, rays: rays, out: out, lit: lit, columns: columns}
+	e.recall = lit == nil && !coloured && !k.tracer.near && !k.single
+	e.fly(coloured)
+	for _, number := range e.doubted {
+		r := &rays[number]
+		out[number] = k.tracer.follow(int(r.facet), r.at, r.n, r.m, r.die, &columns[r.column])
 	}
+}
+
+// fly follows the rays of the errand.
+func (e *errand) fly(coloured bool) {
+	k := e.kernel
+	e.flight, e.bins, e.entrances = k.newFlight(), make([]eyeBins, len(e.columns)), make([]entrance, len(k.planes))
 	for e.live < inFlight && e.enter(e.live) {
 		e.live++
 	}
@@ -106,7 +125,6 @@ func (k *kernel) follow(rays []ray, out []Ledger, lit []float64, columns []sums)
 	if k.tracer.averaged {
 		mirror, split = mirrorAveraged, splitAveraged
 	}
-	coloured := slices.ContainsFunc(rays, func(r ray) bool { return r.absorb > 0 })
 	in, f := &tables{&k.cells[0], &k.lists[0], &k.planes[0], &k.normals[0], &e.bins[0][0][0], 0}, e.flight
 	for e.live > 0 {
 		in.busy = (e.live + 7) / 8
@@ -116,7 +134,7 @@ func (k *kernel) follow(rays []ray, out []Ledger, lit []float64, columns []sums)
 		look(in, f)
 		aim(in, f)
 		settle(in, f)
-		if lit != nil {
+		if e.lit != nil {
 			depart(in, f)
 		}
 		mirror(in, f)
@@ -126,7 +144,7 @@ func (k *kernel) follow(rays []ray, out []Ledger, lit []float64, columns []sums)
 		split(in, f)
 		tally(in, f)
 		bin(in, f)
-		if lit != nil {
+		if e.lit != nil {
 			e.shine(in.busy)
 		}
 		e.replace(in.busy)
@@ -134,7 +152,7 @@ func (k *kernel) follow(rays []ray, out []Ledger, lit []float64, columns []sums)
 	for c := range e.bins {
 		for place := range e.bins[c] {
 			for bin, share := range e.bins[c][place] {
-				columns[c][firstFrom+bin] += share
+				e.columns[c][firstFrom+bin] += share
 			}
 		}
 	}
@@ -201,8 +219,8 @@ func (e *errand) replace(busy int) {
 // when there is none. Rays that do not get into the stone are done at once.
 func (e *errand) enter(place int) bool {
 	t := e.tracer
-	for e.next < len(e.rays) {
-		r, l := &e.rays[e.next], &e.out[e.next]
+	for e.next < len(e.rays)+len(e.again) {
+		r, l := e.numbered(int32(e.next))
 		e.ray[place] = int32(e.next)
 		e.next++
 
@@ -211,7 +229,7 @@ func (e *errand) enter(place int) bool {
 		*l = Ledger{Surface: surface}
 		sums := &e.columns[r.column]
 		if e.lit == nil {
-			t.litSurface(in.mirrored.dot(t.outline.eye), surface, sums)
+			t.litSurface(in.mirrored.dot(t.outline.eye), math.Copysign(surface, r.weight), sums)
 		} else {
 			seen := surface * t.seen(in.mirrored, r.wavelength)
 			e.lit[e.next-1] = seen
@@ -234,7 +252,7 @@ func (e *errand) enter(place int) bool {
 		g.ax[i], g.ay[i], g.az[i] = float32(light.a.x), float32(light.a.y), float32(light.a.z)
 		g.eta[i], g.absorb[i], g.weight[i] = float32(r.n/r.m), float32(r.absorb), float32(r.weight)
 		g.returned[i], g.head[i], g.leaked[i], g.absorbed[i] = 0, 0, 0, 0
-		g.unmet[i], g.windowed[i], g.bounces[i] = -1, 0, 0
+		g.unmet[i], g.windowed[i], g.bounces[i], g.doubt[i] = -1, 0, 0, 0
 		g.die[i] = int32(r.die)
 		g.bins[i] = (r.column*8 + int32(i)) * fromBins * 8
 		return true
@@ -273,19 +291,34 @@ func (e *errand) entrance(r *ray) *entrance {
 // stone, of radius 1, with room for many rounding errors. The pass mirror has it too.
 const sphere = 1.001
 
+// numbered returns a ray by its number, and where its ledger goes: nowhere, for those
+// that fly again.
+func (e *errand) numbered(number int32) (*ray, *Ledger) {
+	if i := int(number) - len(e.rays); i >= 0 {
+		return &e.again[i], new(Ledger)
+	}
+	return &e.rays[number], &e.out[number]
+}
+
 // leave writes the ledger of a ray whose path is over.
 func (e *errand) leave(place int) {
 	g, i := &e.flight.groups[place/8], place%8
-	r, l := &e.rays[e.ray[place]], &e.out[e.ray[place]]
+	r, l := e.numbered(e.ray[place])
 	sums := &e.columns[r.column]
 	l.Returned, l.Head, l.Leaked = float64(g.returned[i]), float64(g.head[i]), float64(g.leaked[i])
 	l.Absorbed, l.Unresolved = float64(g.absorbed[i]), float64(g.i[i])
-	sums[segmentCount] += float64(g.bounces[i])
+	sums[segmentCount] += math.Copysign(float64(g.bounces[i]), r.weight)
 	if l.Leaked > 0.5 {
 		sums[leakyArea] += r.weight
 	}
 	if g.windowed[i] != 0 {
 		sums[windowedArea] += r.weight
+	}
+	if e.recall && g.doubt[i] != 0 && r.weight > 0 {
+		e.doubted = append(e.doubted, e.ray[place])
+		back := *r
+		back.weight = -back.weight
+		e.again = append(e.again, back)
 	}
 }
 
@@ -303,6 +336,7 @@ func (e *errand) move(from, to int) {
 	b.eta[j], b.absorb[j], b.weight[j] = a.eta[i], a.absorb[i], a.weight[i]
 	b.returned[j], b.head[j], b.leaked[j], b.absorbed[j] = a.returned[i], a.head[i], a.leaked[i], a.absorbed[i]
 	b.unmet[j], b.windowed[j], b.bounces[j] = a.unmet[i], a.windowed[i], a.bounces[i]
+	b.doubt[j] = a.doubt[i]
 	b.die[j], b.bins[j] = a.die[i], a.bins[i]
 	a.i[i], a.q[i], a.u[i], a.v[i] = 0, 0, 0, 0
 }

@@ -66,9 +66,9 @@ func kernelRays(tr *tracer, n float64, number int, rng *rand.Rand) (rays []ray) 
 	return rays
 }
 
-// TestKernelAgainstFloat64 follows the same rays in both forms. float32 lets a ray
-// that comes within 1e-6 of an edge or of the critical angle take another way, so
-// most rays must agree closely and the means within what the others can do.
+// TestKernelAgainstFloat64 follows the same rays in both forms. Rays of which float32
+// cannot tell the way are followed in float64, so nearly all rays must agree closely, and
+// the means of the ledger as the design asks.
 func TestKernelAgainstFloat64(t *testing.T) {
 	all := stones(t)
 	all["brilliant"] = brilliant(t)
@@ -110,19 +110,23 @@ func TestKernelAgainstFloat64(t *testing.T) {
 						*entry64(&rounding, q) += (q.Of(got[i]) - q.Of(want[i])) / number
 					}
 				}
-				// Seen: 4 to 7 in 10 000.
-				if astray > number/500 {
+				// Seen: 3 in 10 000 at most, where the die decides about a share that is just faint.
+				if astray > number/1000 {
 					t.Errorf("%d of %d rays go another way", astray, number)
 				}
 				// Where all rays meet a facet at one angle, as in a prism, rounding is alike for all.
 				if worst := difference(rounding, Ledger{}).Max(); worst > 5e-6 {
 					t.Errorf("rays that go the same way differ by %.2g in the mean", worst)
 				}
-				// The rays astray go either way at random, each by less than 1.
+				// What the others do to areas and bins goes either way, each by less than 1.
+				const float32Ledger = 1e-5
 				stray := 5*math.Sqrt(float64(astray+1))/number + 1e-6
 				for c := range gotSums {
 					for slot := range slots {
 						limit := stray
+						if slot < int(quantities) {
+							limit = float32Ledger
+						}
 						if slot == segmentCount {
 							limit = 0.005 * wantSums[c][slot] / number
 						}

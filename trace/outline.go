@@ -57,7 +57,7 @@ func newOutline(b *body, f frame, corners []vec, square float64) *outline {
 			o.facet[1] = append(o.facet[1], j)
 		}
 	}
-	whole := region{u: -o.half, v: -o.half, step: 2 * o.half / looks, side: looks, right: 1, up: looks}
+	whole := region{u: -o.half, v: -o.half, step: 2 * o.half / looks, side: looks, right: 1, up: looks, rounding: 1e-14}
 	for _, side := range []struct {
 		cells *cells
 		fs    []plane2

@@ -67,6 +67,7 @@ func settle() {
 	eachGroup("settle", "One step toward the exit, by every facet that can be it; notes who has arrived.", func() {
 		lists, planes := address("lists"), address("planes")
 		near, nearest := load(ray("s")), load(ray("facet"))
+		doubt := load(ray("doubt"))
 		name, list, more := ctx.GP64(), ctx.GP64(), ctx.GP64()
 
 		ctx.Label("pair")
@@ -75,6 +76,7 @@ func settle() {
 			ctx.MOVWLZX(Mem{Base: lists, Index: name, Scale: 8}, name.As32())
 			return name
 		})
+		tell(doubt, m, number, near, nearest)
 		s, facet := try(m, number, near, nearest)
 		ctx.XORL(more.As32(), more.As32())
 		m, number = rowsOf(planes, func(i int) reg.Register {
@@ -85,6 +87,7 @@ func settle() {
 			ctx.ORL(list.As32(), more.As32())
 			return name
 		})
+		tell(doubt, m, number, s, facet)
 		s, facet = try(m, number, s, facet)
 		ctx.VMOVAPS(s, near)
 		ctx.VMOVAPS(facet, nearest)
@@ -95,7 +98,33 @@ func settle() {
 		store(compare(near, equal, ray("s")), ray("arrived"))
 		store(near, ray("s"))
 		store(nearest, ray("facet"))
+		store(doubt, ray("doubt"))
 	})
+}
+
+// tell marks the rays in doubt: where they come to the plane of their facet they are so
+// close to another that rounding may have decided between the two.
+func tell(doubt vector, m triple, name, s, facet vector) {
+	slope, x := dot(m, direction()), position()
+	gap := load(one())
+	subProduct(gap, in(m.x), x.x)
+	subProduct(gap, in(m.y), x.y)
+	subProduct(gap, in(m.z), x.z)
+	subProduct(gap, slope, s)
+	tied := compare(and(gap, magnitude()), lessThan, tieLimit())
+	tied = and(tied, compare(slope, moreThan, zero()))
+	same := ctx.YMM()
+	ctx.VPCMPEQD(name, facet, same)
+	ctx.VORPS(without(same, tied), doubt, doubt)
+}
+
+// tieLimit is how close two facets' planes count as tied, as a share of their distance
+// from the middle of the stone: many rounding errors, and more with every facet, since
+// they add up.
+func tieLimit() vector {
+	limit := load(number(2e-6))
+	addProduct(limit, float(ray("bounces")), number(2.5e-7))
+	return limit
 }
 
 // address loads where a table is.

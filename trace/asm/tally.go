@@ -21,6 +21,16 @@ func tally() {
 		deposit("head", and(toHead, through))
 		deposit("returned", without(or(down, toHead), through))
 
+		// Rounding may have chosen where it goes, or whether any goes at all.
+		// All rays of one way leave in one direction: here it pays to be careful.
+		limit := load(number(2e-5))
+		close := compare(and(up, magnitude()), lessThan, limit)
+		close = or(close, compare(and(sub(up, all("headCos")), magnitude()), lessThan, limit))
+		close = and(close, compare(through, moreThan, zero()))
+		critical := compare(and(load(ray("g2")), magnitude()), lessThan, limit)
+		close = or(close, and(critical, ray("arrived")))
+		store(or(close, ray("doubt")), ray("doubt"))
+
 		// The first meeting with the pavilion decides whether one sees through.
 		meets := moreInt(load(all("pavilion")), ray("facet"))
 		meets = and(meets, ray("arrived"))
