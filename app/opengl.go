@@ -4,6 +4,8 @@ package main
 
 import (
 	"fmt"
+	"os"
+	"runtime"
 
 	"github.com/go-gl/glfw/v3.4/glfw"
 )
@@ -14,7 +16,12 @@ import (
 func openGLAnswers() error {
 	// The library may choose X11 where Wayland is there too: only if both fail is
 	// there no window.
-	err := hiddenWindow(glfw.AnyPlatform)
+	first := glfw.AnyPlatform
+	if runtime.GOOS == "linux" && os.Getenv("DISPLAY") != "" &&
+		os.Getenv("WAYLAND_DISPLAY") == "" && os.Getenv("XDG_RUNTIME_DIR") == "" {
+		first = glfw.PlatformX11 // Wayland's library complains on stderr where it cannot be
+	}
+	err := hiddenWindow(first)
 	if err != nil && hiddenWindow(glfw.PlatformX11) == nil {
 		err = nil
 	}

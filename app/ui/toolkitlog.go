@@ -4,7 +4,6 @@ import (
 	"io"
 	"log"
 	"os"
-	"runtime"
 	"strings"
 	"sync"
 )
@@ -43,16 +42,12 @@ func (l *toolkitLog) String() string {
 	return strings.Join(l.lines, "\n")
 }
 
-// takeToolkitLog has the toolkit's log remembered. Where there can be no Wayland display the
-// libraries below the toolkit are kept from asking for one, which they complain of, too.
+// takeToolkitLog has the toolkit's log remembered.
 func takeToolkitLog() *toolkitLog {
 	l := &toolkitLog{}
 	if os.Getenv(stagesVariable) != "" {
 		l.also = os.Stderr
 	}
 	log.SetOutput(l)
-	if runtime.GOOS == "linux" && os.Getenv("XDG_RUNTIME_DIR") == "" && os.Getenv("WAYLAND_DISPLAY") == "" {
-		os.Setenv("FYNE_PLATFORM", "x11")
-	}
 	return l
 }
