@@ -306,13 +306,12 @@ func chart(p *drawing.Page, w words, title string, tilts []Tilt, curves []curve,
 	const room = 8.0
 	p.Write(strong(), black(), drawing.Left, pt(at.X, at.Y+body().Height()), title)
 	left, top := at.X+room, at.Y+body().Height()+2.5
-	wide := width - room - 1
+	first, last := tilts[0].Angle, tilts[len(tilts)-1].Angle
+	wide := width - room - small().Width(w.degrees(last.Degrees(), 0))/2 // half of the last number stands past the frame
 	grid := drawing.Style{Stroke: drawing.Grey(0xdc), Width: 0.2}
 	place := func(angle facets.Angle, v float64) drawing.Point {
-		span := tilts[len(tilts)-1].Angle - tilts[0].Angle
-		return pt(left+wide*float64((angle-tilts[0].Angle)/span), top+height*(1-v))
+		return pt(left+wide*float64((angle-first)/(last-first)), top+height*(1-v))
 	}
-	first, last := tilts[0].Angle, tilts[len(tilts)-1].Angle
 	for _, v := range []float64{0, 0.25, 0.5, 0.75, 1} {
 		p.Line(grid, place(first, v), place(last, v))
 		p.Write(small(), pale(), drawing.Right, pt(left-1.2, place(first, v).Y+small().Height()/2), w.number(100*v, 0))

@@ -27,6 +27,7 @@ import (
 
 	"golang.org/x/net/html"
 
+	"pavilight/app/drawing"
 	"pavilight/app/picture"
 	"pavilight/facets"
 	"pavilight/gems"
@@ -436,6 +437,44 @@ func TestBarNoteSpeaksOfWhatIsShown(t *testing.T) {
 				t.Errorf("%s, %s: the note does not end with %q", language, of.name, w["bar.grade"])
 			}
 		}
+	}
+}
+
+// TestFiguresHoldTheirWords: what stands past the edge of a figure is cut off in a browser.
+func TestFiguresHoldTheirWords(t *testing.T) {
+	const rounding = 1e-6 // mm
+	figures := 0
+	var look func(language string, parts []part)
+	look = func(language string, parts []part) {
+		for _, one := range parts {
+			switch p := one.(type) {
+			case together:
+				look(language, p.parts)
+			case figure:
+				figures++
+				for _, m := range p.page.Marks {
+					text, ok := m.(*drawing.Text)
+					if !ok {
+						continue
+					}
+					wide := text.Type.Width(text.Words)
+					left := text.At.X - wide*float64(text.Align)/2 // Left, Middle, Right are 0, 1, 2
+					if left < -rounding || left+wide > p.page.Width+rounding {
+						t.Errorf("%s: %q reaches from %.2f to %.2f mm in a figure %.2f mm wide", language, text.Words, left, left+wide, p.page.Width)
+					}
+				}
+			}
+		}
+	}
+	for _, language := range Languages() {
+		d, err := compose(findings(t, small3), cover(language))
+		if err != nil {
+			t.Fatal(err)
+		}
+		look(language, d.parts)
+	}
+	if figures < 4*len(Languages()) {
+		t.Errorf("%d figures were looked at", figures)
 	}
 }
 

@@ -304,7 +304,7 @@ func (w *window) tuneAnswer() fyne.CanvasObject {
 	}
 	t.before, t.after = picture(), picture()
 	var sides []fyne.CanvasObject
-	for k, name := range []words.Key{"As it stands", "The best so far"} {
+	for k, name := range []words.Key{"As it stands", "The best found"} {
 		t.numbers[k] = newWrapped(theme.ColorNameForeground, theme.SizeNameText)
 		sides = append(sides, container.NewBorder(newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, w.words.Say(name)).bold(),
 			container.New(&linesLayout{2}, t.numbers[k]), nil, nil, []*canvas.Image{t.before, t.after}[k]))
