@@ -427,6 +427,18 @@ func (sc *Scan) Stone(p ScanPlacement) (*Stone, error) {
 	if err != nil {
 		return nil, sc.fault(err.Error(), "scan the whole stone; a side may be missing")
 	}
+	// Flats that are nearly parallel may meet far outside of what was scanned.
+	const most = 10 // times the scan's size
+	lo, hi := loose.Corners[0], loose.Corners[0]
+	for _, c := range loose.Corners {
+		for k := range 3 {
+			lo[k], hi[k] = min(lo[k], c[k]), max(hi[k], c[k])
+		}
+	}
+	if size := hi.Sub(lo).Len(); !(size <= most*sc.Size.Len()) {
+		return nil, sc.fault(fmt.Sprintf("its flats meet %.3g mm apart, and the surface is %.3g mm across", size, sc.Size.Len()),
+			"scan the whole stone; a side may be missing")
+	}
 	placed, err := place(loose, p)
 	if err != nil {
 		var f *Fault

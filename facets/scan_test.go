@@ -806,3 +806,15 @@ func TestHostileMeshes(t *testing.T) {
 		})
 	}
 }
+
+// Flats that meet far away from the surface make no stone of it.
+func TestFlatsThatMeetFarAway(t *testing.T) {
+	sc := &Scan{File: "far.obj", Size: mgl64.Vec3{1, 1, 1}, Bodies: 1, mesh: &mesh{}}
+	for _, p := range []mgl64.Vec3{{1, 0, 1e-3}, {-1, 0, 1e-3}, {0, 1, 1e-3}, {0, -1, 1e-3}, {0, 0, -1}} {
+		sc.Facets = append(sc.Facets, ScanFacet{Normal: p.Normalize(), Distance: 0.5, Area: 1, Triangles: 2})
+	}
+	s, err := sc.Stone(ScanPlacement{})
+	if err == nil || !strings.Contains(err.Error(), "its flats meet") {
+		t.Errorf("%v, %v", s != nil, err)
+	}
+}
