@@ -1,6 +1,8 @@
 package ui
 
 import (
+	"time"
+
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/driver/desktop"
 	"fyne.io/fyne/v2/widget"
@@ -26,7 +28,9 @@ type numberField struct {
 
 	value   float64 // the last that was shown or committed
 	focused bool
-	entered bool // the focus came with the press under way
+	entered bool // the press under way marks all: the focus came with it, or the number was just taken
+	taken   bool // the number was taken by Enter, and the field has not been clicked since
+	doubled time.Time
 	tip     tip
 }
 
@@ -42,7 +46,13 @@ func newNumberField(read func(string) (float64, error), write func(float64) stri
 	f := &numberField{read: read, write: write, step: step}
 	f.ExtendBaseWidget(f)
 	f.Scroll = fyne.ScrollNone // never scroll sideways inside the field
-	f.OnSubmitted = func(string) { f.settle() }
+	f.OnSubmitted = func(string) {
+		f.settle()
+		if !f.pending() {
+			f.taken = true
+			f.markAll() // typing on replaces it
+		}
+	}
 	return f
 }
 
@@ -157,24 +167,32 @@ func (f *numberField) Scrolled(e *fyne.ScrollEvent) {
 	}
 }
 
-// MouseDown notes whether it brings the focus.
+// MouseDown notes whether it brings the focus, or is the first after Enter.
 func (f *numberField) MouseDown(e *desktop.MouseEvent) {
-	f.entered = !f.focused
+	f.entered = !f.focused || f.taken && !f.pending()
+	f.taken = false
 	f.Entry.MouseDown(e)
 }
 
-// MouseUp marks all of the text if this click brought the focus and marked nothing
-// itself, so that typing replaces the number; a second click sets the cursor.
+// thirdClick is how soon after a double click another one belongs to it.
+const thirdClick = 500 * time.Millisecond
+
+// MouseUp marks all of the text if this click brought the focus, or came after Enter, and
+// marked nothing itself, so that typing replaces the number; a second click sets the
+// cursor, and quick ones mark all.
 func (f *numberField) MouseUp(e *desktop.MouseEvent) {
 	f.Entry.MouseUp(e)
-	if f.entered && f.SelectedText() == "" {
+	if f.entered && f.SelectedText() == "" || time.Since(f.doubled) < thirdClick {
 		f.markAll()
 	}
 	f.entered = false
 }
 
 // DoubleTapped marks all of the text, not the word beside the decimal point.
-func (f *numberField) DoubleTapped(*fyne.PointEvent) { f.markAll() }
+func (f *numberField) DoubleTapped(*fyne.PointEvent) {
+	f.doubled = time.Now()
+	f.markAll()
+}
 
 func (f *numberField) markAll() { f.Entry.TypedShortcut(&fyne.ShortcutSelectAll{}) }
 

@@ -12,6 +12,7 @@ import (
 	"time"
 
 	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/driver/desktop"
 	"fyne.io/fyne/v2/storage"
 	"fyne.io/fyne/v2/test"
 	"fyne.io/fyne/v2/theme"
@@ -160,6 +161,46 @@ func TestTypedAngleMovesTheMaps(t *testing.T) {
 	}
 	if strings.Contains(r.win.Title(), "*") {
 		t.Errorf("title %q shows a change after all were taken back", r.win.Title())
+	}
+}
+
+// Numbers are typed over, not into: after Enter, after a click that follows it, and after
+// clicks that follow each other quickly. A single later click sets the cursor.
+func TestNumbersAreTypedOver(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	f := r.row(t, "P1").field
+	click := func() {
+		e := &desktop.MouseEvent{Button: desktop.MouseButtonPrimary}
+		e.Position = fyne.NewPos(f.Size().Width-2, f.Size().Height/2)
+		f.MouseDown(e)
+		f.MouseUp(e)
+	}
+	enter := func(text string) {
+		test.Type(f, text)
+		f.TypedKey(&fyne.KeyEvent{Name: fyne.KeyReturn})
+	}
+	want := func(when string, angle float64) {
+		t.Helper()
+		if got := r.angle(t, "P1"); got != angle {
+			t.Errorf("%s: P1 stands at %v, want %v", when, got, angle)
+		}
+	}
+	typeInto(r, f, "41.6")
+	enter("41.7")
+	want("typed on after Enter", 41.7)
+	click()
+	enter("41.8")
+	want("clicked after Enter", 41.8)
+	click()
+	f.DoubleTapped(&fyne.PointEvent{})
+	click()
+	enter("41.9")
+	want("clicked three times", 41.9)
+	click()
+	f.doubled = time.Time{} // long after
+	click()
+	if f.SelectedText() != "" {
+		t.Errorf("a second, later click leaves %q marked", f.SelectedText())
 	}
 }
 
