@@ -176,7 +176,9 @@ func TestNumbersAreTypedOver(t *testing.T) {
 		f.MouseUp(e)
 	}
 	enter := func(text string) {
-		test.Type(f, text)
+		for _, c := range text { // test.Type would give the field the focus anew
+			f.TypedRune(c)
+		}
 		f.TypedKey(&fyne.KeyEvent{Name: fyne.KeyReturn})
 	}
 	want := func(when string, angle float64) {
