@@ -245,13 +245,16 @@ func (p *program) focus() {
 // place returns where the window said that a thing is.
 func (p *program) place(name string) (x, y string) {
 	p.t.Helper()
-	p.mu.Lock()
-	defer p.mu.Unlock()
-	at, ok := p.places[name]
-	if !ok {
-		p.t.Fatalf("the window tells no place of %q", name)
+	for began := time.Now(); time.Since(began) < p.patience; time.Sleep(10 * time.Millisecond) {
+		p.mu.Lock()
+		at, ok := p.places[name]
+		p.mu.Unlock()
+		if ok { // places are told a little after the stage that they belong to
+			return at[0], at[1]
+		}
 	}
-	return at[0], at[1]
+	p.t.Fatalf("the window tells no place of %q", name)
+	return "", ""
 }
 
 func (p *program) click(name string) {

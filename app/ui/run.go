@@ -76,7 +76,7 @@ func Run(ctx context.Context, o Options) error {
 	// The toolkit hears signals, too, and may have ended its loop by the time that ctx tells
 	// of one; nothing may be asked of its windows then.
 	var over atomic.Bool
-	a.Lifecycle().SetOnStopped(func() { over.Store(true) })
+	saveSettings := takeLastHook(a.Lifecycle())
 	stop := context.AfterFunc(ctx, func() {
 		post(func() {
 			if !over.Load() {
@@ -97,7 +97,24 @@ func Run(ctx context.Context, o Options) error {
 	w.stopRooms()
 	w.keeper.recovery.Close()
 	w.keeper.claims.Release()
+	saveSettings()
 	return nil
+}
+
+// takeLastHook takes from the toolkit what it does when its loop has ended, which is to
+// save the settings, and returns it, to be called then. The toolkit hands it to the loop
+// that is closing, and panics where the two meet.
+func takeLastHook(l fyne.Lifecycle) func() {
+	toolkits, ok := l.(interface {
+		OnStopped() func()
+		SetOnStoppedHookExecuted(func())
+	})
+	if !ok || toolkits.OnStopped() == nil {
+		return func() {}
+	}
+	hook := toolkits.OnStopped()
+	toolkits.SetOnStoppedHookExecuted(nil)
+	return hook
 }
 
 // bundledDocument is the stone that the window opens with when none is named.
