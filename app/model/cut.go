@@ -2,7 +2,6 @@ package model
 
 import (
 	"context"
-	"image"
 	"io"
 	"os"
 	"path/filepath"
@@ -12,7 +11,6 @@ import (
 	"sync"
 
 	"pavilight/app/disk"
-	"pavilight/app/drawing"
 	"pavilight/app/sheet"
 	"pavilight/app/words"
 	"pavilight/facets"
@@ -43,8 +41,7 @@ type Cut struct {
 	Trouble error        // why there is no sheet
 	Sheet   *sheet.Sheet // nil before the first
 
-	Page    int         // in view, 0 for the first
-	Picture *image.RGBA // of it, PageWidth pixels wide; nil before the first
+	paging
 
 	Step     int            // of the film in view: 0 is the rough, 1 the first cut
 	Machines sheet.Machines // the folder of the user's machines
@@ -53,15 +50,11 @@ type Cut struct {
 	onChange func()
 	words    *words.Words
 	subject  cutSubject
-	light    sheet.Job // holds the traced light of the subject; its Light is nil before
-	pages    []*drawing.Page
+	light    sheet.Job     // holds the traced light of the subject; its Light is nil before
 	whole    *facets.Stone // what the steps start from
 	number   int           // of the run that counts
 	cancel   context.CancelFunc
-
-	width   int // of the picture, pixels
-	painter painter
-	open    sync.WaitGroup // goroutines of all kinds
+	open     sync.WaitGroup // goroutines of all kinds
 }
 
 // cutSubject is what the sheet is of.
@@ -82,7 +75,7 @@ func (s cutSubject) same(o cutSubject) bool {
 // goroutine, in order, without waiting for it; onChange is called there.
 func NewCut(machines sheet.Machines, do func(func()), onChange func()) *Cut {
 	c := &Cut{Wish: CutWish{Paper: sheet.Papers()[0].Name, Maps: true}, Machines: machines, do: do, onChange: onChange}
-	c.painter = painter{do: do, open: &c.open}
+	c.painter, c.repaints = painter{do: do, open: &c.open}, onChange
 	return c
 }
 
@@ -153,8 +146,8 @@ func (c *Cut) make() {
 			c.Running, c.cancel = false, nil
 			c.Stopped = stopped
 			if !stopped && err != nil {
-				c.Trouble, c.Sheet, c.pages, c.Picture = err, nil, nil, nil
-				c.painter.forget()
+				c.Trouble, c.Sheet = err, nil
+				c.clear()
 			}
 		})
 	})
@@ -226,10 +219,9 @@ func (r *cutRun) layOut(job sheet.Job) error {
 	}
 	r.hand(func() {
 		c := r.cut
-		c.Sheet, c.pages, c.whole = made, pages, whole
-		c.Page = max(0, min(c.Page, len(pages)-1))
+		c.Sheet, c.whole = made, whole
 		c.Step = max(0, min(c.Step, len(made.Rows)))
-		c.paint()
+		c.show(pages)
 	})
 	return nil
 }
@@ -244,49 +236,6 @@ func (c *Cut) Stop() {
 // Wait returns when all goroutines have ended. Where do waits for the window's goroutine
 // it must not be called there.
 func (c *Cut) Wait() { c.open.Wait() }
-
-// Pages returns how many pages the sheet has, 0 before there is one.
-func (c *Cut) Pages() int { return len(c.pages) }
-
-// Shape returns the height of the page in view over its width.
-func (c *Cut) Shape() float64 {
-	if len(c.pages) == 0 {
-		return 297.0 / 210
-	}
-	p := c.pages[c.Page]
-	return p.Height / p.Width
-}
-
-// Turn brings another page into view; beyond the ends it stays.
-func (c *Cut) Turn(page int) {
-	page = max(0, min(page, len(c.pages)-1))
-	if page != c.Page {
-		c.Page = page
-		c.paint()
-		c.onChange()
-	}
-}
-
-// mostPageWidth bounds the picture of a page, pixels.
-const mostPageWidth = 3000
-
-// SetWidth says how many pixels of the screen the page takes across.
-func (c *Cut) SetWidth(pixels int) {
-	c.width = max(1, min(pixels, mostPageWidth))
-	c.paint()
-}
-
-// paint has the page in view painted.
-func (c *Cut) paint() {
-	if len(c.pages) == 0 {
-		return
-	}
-	page := c.pages[c.Page]
-	c.painter.paint(painting{page, c.width, func() *drawing.Page { return page }, func(img *image.RGBA, _ *drawing.Page) {
-		c.Picture = img
-		c.onChange()
-	}})
-}
 
 // Ready reports whether there is a sheet that can be written.
 func (c *Cut) Ready() bool { return c.Sheet != nil && !c.Running && c.Trouble == nil }

@@ -2,7 +2,6 @@ package model
 
 import (
 	"context"
-	"image"
 	"io"
 	"path/filepath"
 	"runtime"
@@ -53,8 +52,7 @@ type Tell struct {
 	Done    float64
 	Trouble error // why there is no report
 
-	Page    int         // in view, 0 for the first
-	Picture *image.RGBA // of it; nil before the first
+	paging
 
 	do       func(func())
 	onChange func()
@@ -63,13 +61,10 @@ type Tell struct {
 	subject  tellSubject
 	traced   tellTraced
 	all      []*report.Findings // of traced; nil before
-	pages    []*drawing.Page
-	number   int // of the run that counts
+	number   int                // of the run that counts
 	cancel   context.CancelFunc
 	setting  bool // pages are being set
 	set      tellSet
-	width    int
-	painter  painter
 	open     sync.WaitGroup
 }
 
@@ -104,7 +99,7 @@ type findMaterial func(facets.MaterialRef) (*gems.Material, error)
 // a plan is cut from and may be called on any goroutine.
 func NewTell(do func(func()), onChange func(), material func(facets.MaterialRef) (*gems.Material, error)) *Tell {
 	t := &Tell{Wish: TellWish{Language: "en", Paper: "a4", Lights: [2]string{"overcast", "room"}}, do: do, onChange: onChange, material: material}
-	t.painter = painter{do: do, open: &t.open}
+	t.painter, t.repaints = painter{do: do, open: &t.open}, onChange
 	return t
 }
 
@@ -177,8 +172,8 @@ func (t *Tell) gather() {
 	if t.Beside != nil {
 		plans = []*facets.Plan{t.Beside, subject.plan} // before, after
 	}
-	t.traced, t.all, t.pages, t.Picture = want, nil, nil, nil
-	t.painter.forget()
+	t.traced, t.all = want, nil
+	t.clear()
 	t.set = tellSet{}
 	t.Running, t.Stopped, t.Done, t.Trouble, t.cancel = true, false, 0, nil, cancel
 	hand := func(do func()) {
@@ -300,12 +295,10 @@ func (t *Tell) compose() {
 			t.setting = false
 			if want.traced == t.traced && t.all != nil {
 				t.set, t.Trouble = want, err
-				if t.pages = pages; err != nil {
-					t.Picture = nil
-					t.painter.forget()
+				if err != nil {
+					t.clear()
 				}
-				t.Page = max(0, min(t.Page, len(pages)-1))
-				t.paint()
+				t.show(pages)
 			}
 			t.compose()
 			t.onChange()
@@ -323,45 +316,6 @@ func (t *Tell) Stop() {
 // Wait returns when all goroutines have ended. Where do waits for the window's goroutine
 // it must not be called there.
 func (t *Tell) Wait() { t.open.Wait() }
-
-// Pages returns how many pages the report has, 0 before there is one.
-func (t *Tell) Pages() int { return len(t.pages) }
-
-// Shape returns the height of the page in view over its width.
-func (t *Tell) Shape() float64 {
-	if len(t.pages) == 0 {
-		return 297.0 / 210
-	}
-	p := t.pages[t.Page]
-	return p.Height / p.Width
-}
-
-// Turn brings another page into view; beyond the ends it stays.
-func (t *Tell) Turn(page int) {
-	page = max(0, min(page, len(t.pages)-1))
-	if page != t.Page {
-		t.Page = page
-		t.paint()
-		t.onChange()
-	}
-}
-
-// SetWidth says how many pixels of the screen the page takes across.
-func (t *Tell) SetWidth(pixels int) {
-	t.width = max(1, min(pixels, mostPageWidth))
-	t.paint()
-}
-
-func (t *Tell) paint() {
-	if len(t.pages) == 0 {
-		return
-	}
-	page := t.pages[t.Page]
-	t.painter.paint(painting{page, t.width, func() *drawing.Page { return page }, func(img *image.RGBA, _ *drawing.Page) {
-		t.Picture = img
-		t.onChange()
-	}})
-}
 
 // Ready reports whether there is a report, as it is wished for, that can be written.
 func (t *Tell) Ready() bool {
