@@ -44,6 +44,10 @@ func (t TuneTask) Name() words.Key {
 	return [...]words.Key{"Find better angles", "Show the goal over two", "What errors cost", "Trade two goals off", "Another material"}[t]
 }
 
+// CanBeSteady reports whether the question can ask for a stone that forgives a slip. A
+// trade-off shows stones as they are, and errors are tried out one by one.
+func (t TuneTask) CanBeSteady() bool { return t != TellErrors && t != TradeTwo }
+
 // doing says what a run is at before it tells more.
 func (t TuneTask) doing() words.Key {
 	return [...]words.Key{"searching", "seeing the field", "cutting with errors", "searching", "moving"}[t]
@@ -84,6 +88,7 @@ type Tune struct {
 	Tilts    []facets.Angle
 	Worst    bool
 	Step     float64 // degrees
+	Steady   float64 // degrees; a stone counts no more than the worst with one angle off by so much, 0 for none
 	Machine  tune.Machine
 	Draws    int            // of TellErrors
 	Cells    int            // of ShowField, along each edge; 0 for the usual number
@@ -109,6 +114,7 @@ type Tune struct {
 	variablesUsed []tune.Variable // by the answer shown
 	aimsUsed      []tune.Aim      // likewise
 	limitsUsed    tune.Limits     // likewise
+	steadyUsed    float64         // likewise, degrees
 	planUsed      *facets.Plan    // likewise
 	faceUpUsed    bool            // likewise: at no other tilt
 
@@ -264,6 +270,9 @@ func (t *Tune) problem() (*tune.Problem, error) {
 	p := &tune.Problem{Pattern: tune.PlanPattern{Plan: t.plan}, Material: t.material, Limits: t.Limits, Head: t.head, Seed: 1,
 		Workers: max(1, runtime.GOMAXPROCS(0)-1)} // the window stays alive
 	p.Goal = tune.Goal{Aims: t.Aims, Worst: t.Worst}
+	if t.Task.CanBeSteady() {
+		p.Steady = facets.Angle(t.Steady) * facets.Degree
+	}
 	var around []Around
 	for _, a := range t.Seen {
 		if a.Chosen {
@@ -313,6 +322,7 @@ func (t *Tune) Begin() {
 	ctx, cancel := context.WithCancel(context.Background())
 	t.number++
 	t.variablesUsed, t.aimsUsed, t.limitsUsed, t.planUsed = p.Variables, p.Goal.Aims, p.Limits, t.plan
+	t.steadyUsed = p.Steady.Degrees()
 	t.faceUpUsed = !slices.ContainsFunc(p.Goal.Cases, func(c tune.Case) bool { return c.View.Tilt != 0 })
 	t.Running, t.Phase, t.Done, t.cancel, t.finished = true, t.words.Say(t.Task.doing()), 0, cancel, make(chan struct{})
 	r := &tuneRun{tune: t, number: t.number, problem: p, task: t.Task, to: t.To, machine: t.Machine, draws: t.Draws, cells: t.Cells, keep: t.KeepFile,

@@ -131,6 +131,35 @@ func TestTuneRoomFindsBetter(t *testing.T) {
 	}
 }
 
+// A stone that shall forgive a slip counts as its worst neighbour does, and the answer
+// says so; a trade-off and errors that are tried out ask for no such thing.
+func TestTuneRoomForgives(t *testing.T) {
+	room, settle := tuneRoom(t)
+	room.Choose(choice(t, room, "C"), false)
+	if err := room.SetLimits(choice(t, room, "P"), 39, 45); err != nil {
+		t.Fatal(err)
+	}
+	room.Steady = 1
+	room.Begin()
+	settle()
+	if room.Trouble != nil || room.Outcome == nil || room.Outcome.Start.Score >= room.Outcome.Start.Measures[0] {
+		t.Fatalf("trouble %v, outcome %+v", room.Trouble, room.Outcome)
+	}
+	o := room.Outcome
+	words := "With one angle off by 1° the goal is at worst " + room.withError(o.Start.Score, o.Start.Error) + " as it stands, " +
+		room.withError(o.Best.Score, o.Best.Error) + " at the best."
+	if all := strings.Join(room.Verdict(), "\n"); !strings.Contains(all, words) {
+		t.Errorf("no word of %q in\n%s", words, all)
+	}
+	for task, want := range map[TuneTask]facets.Angle{FindBetter: facets.Degree, ShowField: facets.Degree, MoveMaterial: facets.Degree,
+		TellErrors: 0, TradeTwo: 0} {
+		room.Task = task
+		if p, err := room.problem(); err != nil || p.Steady != want {
+			t.Errorf("%s asks for %v, %v", task.Name(), p.Steady, err)
+		}
+	}
+}
+
 // A run that is stopped keeps what it found, and the late words of a run that another has
 // followed are not taken.
 func TestTuneRoomStops(t *testing.T) {

@@ -205,6 +205,10 @@ func (t *Tune) outcomeWords(o *tune.Outcome, vs []tune.Variable) (lines []string
 	default:
 		lines = append(lines, t.words.Say("Nothing better was found than the stone as it stands, beyond what chance explains."))
 	}
+	if t.steadyUsed > 0 && o.Start.Seen && o.Best.Seen {
+		lines = append(lines, t.words.Say("With one angle off by %g° the goal is at worst %s as it stands, %s at the best.",
+			t.steadyUsed, t.withError(o.Start.Score, o.Start.Error), t.withError(o.Best.Score, o.Best.Error)))
+	}
 	for i, v := range vs {
 		if x := o.Best.Values[i]; v.High > v.Low && (x < v.Low+v.Step*0.999 || x > v.High-v.Step*0.999) {
 			lines = append(lines, t.words.Say("%s stands at a limit of its %s to %s: wider ones may do better.",
@@ -218,7 +222,7 @@ func (t *Tune) outcomeWords(o *tune.Outcome, vs []tune.Variable) (lines []string
 		case !near.Seen:
 			lines = append(lines, t.words.Say("Careful: with %s %s there is no such stone.", VariableName(t.words, v), by))
 		case loss > nearLoss*math.Abs(o.Best.Score):
-			lines = append(lines, t.words.Say("Careful: with %s %s it loses %.3f. The best stands at an edge; rocking the stone, too, may find a calmer place.", VariableName(t.words, v), by, loss))
+			lines = append(lines, t.words.Say("Careful: with %s %s it loses %.3f. The best stands at an edge; ask for one that forgives a slip, or rock the stone, too, to find a calmer place.", VariableName(t.words, v), by, loss))
 		}
 	}
 	return append(lines, t.words.Say("%d stones were looked at. Both shown are traced anew, with rays that the search has not seen.", o.Tried))

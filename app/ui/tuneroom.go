@@ -35,6 +35,7 @@ type tuneBench struct {
 	other   *fyne.Container // how much the second goal counts
 	worst   *widget.Check
 	light   *fyne.Container
+	steady  fyne.CanvasObject
 	to      *fyne.Container
 	toName  *chooser
 	vary    *fyne.Container
@@ -165,7 +166,8 @@ func (w *window) tuneQuestion() fyne.CanvasObject {
 		t.tune.Light, t.lit = l, name
 	})
 	t.light = row("Light", light)
-	t.goals = column(heading("What it shall be good at"), row("First", first), row("And", second), t.other, t.light)
+	t.steady = w.limitRow(row, "Forgives", "° off, either way", func() float64 { return t.tune.Steady }, func(v float64) { t.tune.Steady = v }, 5, 0.1)
+	t.goals = column(heading("What it shall be good at"), row("First", first), row("And", second), t.other, t.light, t.steady)
 
 	t.seen = container.New(layout.NewCustomPaddedVBoxLayout(0))
 	rocked := widget.NewCheck(w.words.Say("also rocked by 10° either way"), nil)
@@ -516,7 +518,7 @@ func (w *window) showQuestion() {
 		o     fyne.CanvasObject
 		shown bool
 	}{
-		{t.goals, !errs}, {t.other, two && t.tune.Task != model.TradeTwo}, {t.light, eye}, {t.to, move},
+		{t.goals, !errs}, {t.other, two && t.tune.Task != model.TradeTwo}, {t.light, eye}, {t.steady, t.tune.Task.CanBeSteady()}, {t.to, move},
 		{t.vary, !errs}, {t.limits, !errs}, {t.slips, errs}, {t.record, !errs}, {t.worst, !errs},
 	} {
 		if part.o.Visible() != part.shown {
