@@ -7,11 +7,13 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"slices"
 	"strconv"
 	"strings"
 	"testing"
 
 	"pavilight/app/command"
+	"pavilight/app/guide"
 )
 
 // near is how far a number that is printed may lie from the one on a page: what is
@@ -24,46 +26,64 @@ const (
 // TestPages goes through each page from top to bottom in a folder of its own: it saves
 // the files that the page says to save, runs the commands, and compares what they print.
 func TestPages(t *testing.T) {
-	pages, err := filepath.Glob("*.md")
-	if err != nil || len(pages) < 4 {
-		t.Fatalf("%d pages: %v", len(pages), err)
-	}
-	for _, name := range pages {
-		text, err := os.ReadFile(name)
-		if err != nil {
-			t.Fatal(err)
-		}
-		t.Run(name, func(t *testing.T) {
+	for _, page := range guide.Pages() {
+		t.Run(page.File, func(t *testing.T) {
 			t.Chdir(t.TempDir())
 			t.Setenv("XDG_CONFIG_HOME", t.TempDir())
 			commands := 0
-			for _, b := range blocks(string(text)) {
-				switch kind, file, _ := strings.Cut(b.kind, " "); kind {
+			for _, part := range page.Parts {
+				switch part.Kind {
+				case "":
 				case "toml":
-					if err := os.WriteFile(file, []byte(b.text), 0o644); err != nil {
+					if err := os.WriteFile(part.File, []byte(part.Text), 0o644); err != nil {
 						t.Fatal(err)
 					}
 				case "console":
-					commands += console(t, b.text)
+					commands += console(t, part.Text)
+				default:
+					t.Errorf("nothing is done with a block of %q", part.Kind)
 				}
 			}
-			if name != "README.md" && commands < 3 {
+			if commands < 3 {
 				t.Errorf("%d commands were run", commands)
 			}
 		})
 	}
 }
 
-// block is a fenced block of a page.
-type block struct{ kind, text string }
-
-func blocks(page string) (all []block) {
-	parts := strings.Split("\n"+page, "\n```")
-	for i := 1; i < len(parts); i += 2 {
-		kind, text, _ := strings.Cut(parts[i], "\n")
-		all = append(all, block{kind, text + "\n"})
+// TestFirstPageNamesAll holds the folder, its first page and the list of pages together,
+// and what a page is taken apart into to what stands there.
+func TestFirstPageNamesAll(t *testing.T) {
+	first, err := os.ReadFile("README.md")
+	if err != nil {
+		t.Fatal(err)
 	}
-	return all
+	files, err := filepath.Glob("*.md")
+	if pages := guide.Pages(); err != nil || len(pages) != len(files)-1 {
+		t.Errorf("%d pages of %q: %v", len(pages), files, err)
+	}
+	at := 0
+	for _, page := range guide.Pages() {
+		link := "- [" + page.Title + "](" + page.File + ")"
+		i := strings.Index(string(first[at:]), link)
+		if i < 0 {
+			t.Errorf("the first page does not name %q, in order", link)
+			continue
+		}
+		at += i
+		text, err := os.ReadFile(page.File)
+		if err != nil {
+			t.Fatal(err)
+		}
+		words := page.Title
+		for _, part := range page.Parts {
+			words += " " + part.Kind + " " + part.File + " " + part.Text
+		}
+		whole := strings.Fields(strings.ReplaceAll(strings.TrimPrefix(string(text), "# "), "```", " "))
+		if got := strings.Fields(words); !slices.Equal(got, whole) {
+			t.Errorf("%s: of %d words %d are in its parts", page.File, len(whole), len(got))
+		}
+	}
 }
 
 // console runs the commands of a block and returns how many.

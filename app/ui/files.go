@@ -37,12 +37,18 @@ func (w *window) open(path string) {
 }
 
 func (w *window) openSample(name string) {
-	w.commitTyping()
 	text, err := fs.ReadFile(testdata.Plans(), name)
-	if err == nil {
-		err = w.bench.OpenText(text, name)
-	}
 	if err != nil {
+		w.explain("The sample %s cannot be opened", err, name)
+		return
+	}
+	w.openText(text, name)
+}
+
+// openText opens a plan that the program carries; it has no file of the user's yet.
+func (w *window) openText(text []byte, name string) {
+	w.commitTyping()
+	if err := w.bench.OpenText(text, name); err != nil {
 		w.explain("The sample %s cannot be opened", err, name)
 		return
 	}

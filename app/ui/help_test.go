@@ -8,6 +8,7 @@ import (
 	"fyne.io/fyne/v2/test"
 	"fyne.io/fyne/v2/widget"
 
+	"pavilight/app/guide"
 	"pavilight/app/licences"
 	"pavilight/testdata"
 )
@@ -47,5 +48,62 @@ func TestLicencesAreShown(t *testing.T) {
 	}
 	if size := top.MinSize(); size.Width > r.win.Canvas().Size().Width || size == (fyne.Size{}) {
 		t.Errorf("the dialog wants %v of %v", size, r.win.Canvas().Size())
+	}
+}
+
+// TestGuideIsShown reads a page of the guide as a person would, from its first words to its
+// last, and opens the plan that it has people write.
+func TestGuideIsShown(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	for _, page := range guide.Pages() {
+		r.showGuide(page)
+		top := r.win.Canvas().Overlays().Top()
+		if top == nil {
+			t.Fatalf("%s: no dialog is open", page.File)
+		}
+		var shown strings.Builder
+		var open *widget.Button
+		for _, o := range test.LaidOutObjects(top) {
+			switch o := o.(type) {
+			case *widget.RichText:
+				shown.WriteString(o.String() + " ")
+			case *widget.Label:
+				shown.WriteString(o.Text + " ")
+			case *widget.Button:
+				if o.Text == "Open this plan" {
+					open = o
+				}
+			}
+		}
+		plan := ""
+		for _, part := range page.Parts {
+			if part.Kind == "toml" {
+				plan = part.Text
+			}
+			words := strings.Fields(strings.NewReplacer("#", "", "*", "", "`", "").Replace(part.Text))
+			if part.Kind != "" {
+				words = strings.Fields(part.Text)
+			}
+			for _, word := range []string{words[0], words[len(words)-1]} {
+				if !strings.Contains(shown.String(), word) {
+					t.Errorf("%s: %q is not shown", page.File, word)
+				}
+			}
+		}
+		if size := top.MinSize(); size.Width > r.win.Canvas().Size().Width || size.Height > r.win.Canvas().Size().Height {
+			t.Errorf("%s: the dialog wants %v of %v", page.File, size, r.win.Canvas().Size())
+		}
+		if (plan != "") != (open != nil) {
+			t.Fatalf("%s: its plan can be opened: %v", page.File, open != nil)
+		}
+		if open == nil {
+			r.win.Canvas().Overlays().Remove(top)
+			continue
+		}
+		test.Tap(open)
+		r.drain()
+		if name := r.bench.Doc.Plan().Name; r.win.Canvas().Overlays().Top() != nil || !strings.Contains(plan, "name = \""+name+"\"") {
+			t.Errorf("%s: %q is open, and a dialog %v", page.File, name, r.win.Canvas().Overlays().Top())
+		}
 	}
 }

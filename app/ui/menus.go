@@ -8,6 +8,7 @@ import (
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/driver/desktop"
 
+	"pavilight/app/guide"
 	"pavilight/app/model"
 	"pavilight/app/words"
 	"pavilight/testdata"
@@ -29,6 +30,9 @@ type menus struct {
 func control(key fyne.KeyName) fyne.Shortcut {
 	return &desktop.CustomShortcut{KeyName: key, Modifier: fyne.KeyModifierShortcutDefault}
 }
+
+// redoToo is the other way to redo that many people's hands know; the menu names one.
+func redoToo() fyne.Shortcut { return controlShift(fyne.KeyZ) }
 
 func controlShift(key fyne.KeyName) fyne.Shortcut {
 	return &desktop.CustomShortcut{KeyName: key, Modifier: fyne.KeyModifierShortcutDefault | fyne.KeyModifierShift}
@@ -91,8 +95,14 @@ func (w *window) buildMenu() *fyne.MainMenu {
 		fyne.NewMenuItemSeparator(),
 		w.item("Stop or go on", control(fyne.KeyPeriod), w.stopOrResume))...)
 
+	guides := w.item("Guide", nil, nil)
+	guides.ChildMenu = fyne.NewMenu("")
+	for _, page := range guide.Pages() {
+		guides.ChildMenu.Items = append(guides.ChildMenu.Items, fyne.NewMenuItem(page.Title, func() { w.showGuide(page) }))
+	}
 	help := fyne.NewMenu(w.words.Say("Help"),
 		w.item("First steps", nil, w.firstSteps),
+		guides,
 		w.item("Copy diagnostics", nil, w.copyDiagnostics),
 		fyne.NewMenuItemSeparator(),
 		w.item("Licences", nil, w.licences),

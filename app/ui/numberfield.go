@@ -194,6 +194,17 @@ func (f *numberField) DoubleTapped(*fyne.PointEvent) {
 	f.markAll()
 }
 
+// TypedShortcut leaves redoing to the window, which asks back where something is being typed.
+func (f *numberField) TypedShortcut(s fyne.Shortcut) {
+	if s.ShortcutName() != redoToo().ShortcutName() {
+		f.Entry.TypedShortcut(s)
+		return
+	}
+	if all, ok := fyne.CurrentApp().Driver().CanvasForObject(f).(fyne.Shortcutable); ok {
+		all.TypedShortcut(s)
+	}
+}
+
 func (f *numberField) markAll() { f.Entry.TypedShortcut(&fyne.ShortcutSelectAll{}) }
 
 // FocusGained marks all of the text, so that typing replaces it.

@@ -327,6 +327,10 @@ func TestRealWindow(t *testing.T) {
 	p.until("refined")
 	s.do("key", "ctrl+z") // the drag
 	p.until("refined")
+	for _, keys := range []string{"ctrl+shift+z", "ctrl+z"} {
+		s.do("key", keys)
+		p.until("refined")
+	}
 	s.do("key", "ctrl+s")
 	p.until("saved")
 	saved, err := os.ReadFile(path)

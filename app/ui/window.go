@@ -114,6 +114,7 @@ func newWindow(a fyne.App, doc *model.Document, system string, do func(func()), 
 	w.win.SetCloseIntercept(w.requestClose)
 	w.win.SetOnDropped(w.dropped)
 	w.win.Canvas().SetOnTypedKey(w.strayKey)
+	w.win.Canvas().AddShortcut(redoToo(), func(fyne.Shortcut) { w.redo() })
 	w.win.Resize(w.files.windowSize())
 	w.onPlan()
 	return w, nil
