@@ -89,7 +89,7 @@ func (c *chooser) MouseOut() { c.hovered = false; c.Refresh(); c.tip.leave() }
 // CreateRenderer builds the word and the mark.
 func (c *chooser) CreateRenderer() fyne.WidgetRenderer {
 	r := &chooserRenderer{c: c, ground: canvas.NewRectangle(color.Transparent),
-		text: canvas.NewText("", color.Transparent), mark: canvas.NewText("▾", color.Transparent)}
+		text: canvas.NewText("", color.Transparent), mark: canvas.NewImageFromResource(theme.NewColoredResource(theme.MenuDropDownIcon(), colourDim))}
 	r.ground.CornerRadius = 4
 	r.text.TextStyle.Bold = true
 	r.objects = []fyne.CanvasObject{r.ground, r.text, r.mark}
@@ -98,17 +98,21 @@ func (c *chooser) CreateRenderer() fyne.WidgetRenderer {
 }
 
 type chooserRenderer struct {
-	c          *chooser
-	ground     *canvas.Rectangle
-	text, mark *canvas.Text
-	objects    []fyne.CanvasObject
+	c       *chooser
+	ground  *canvas.Rectangle
+	text    *canvas.Text
+	mark    *canvas.Image
+	objects []fyne.CanvasObject
 }
+
+// chooserMark is the edge of the mark beside the word; a fifth of it is air on either side.
+const chooserMark = 17
 
 func (r *chooserRenderer) Destroy()                     {}
 func (r *chooserRenderer) Objects() []fyne.CanvasObject { return r.objects }
 
 func (r *chooserRenderer) MinSize() fyne.Size {
-	return r.text.MinSize().AddWidthHeight(6+r.mark.MinSize().Width+4, 2)
+	return r.text.MinSize().AddWidthHeight(3+chooserMark, 2)
 }
 
 func (r *chooserRenderer) Layout(size fyne.Size) {
@@ -116,15 +120,14 @@ func (r *chooserRenderer) Layout(size fyne.Size) {
 	r.ground.Resize(size)
 	r.text.Move(fyne.NewPos(3, (size.Height-word.Height)/2))
 	r.text.Resize(word)
-	mark := r.mark.MinSize()
-	r.mark.Move(fyne.NewPos(3+word.Width+4, (size.Height-mark.Height)/2))
-	r.mark.Resize(mark)
+	r.mark.Move(fyne.NewPos(3+word.Width, (size.Height-chooserMark)/2))
+	r.mark.Resize(fyne.NewSquareSize(chooserMark))
 }
 
 func (r *chooserRenderer) Refresh() {
 	r.text.Text, r.text.TextSize = r.c.text, theme.Size(r.c.size)
-	r.text.Color, r.mark.Color = themed(theme.ColorNameForeground), themed(colourDim)
-	r.mark.TextSize = theme.CaptionTextSize()
+	r.text.Color = themed(theme.ColorNameForeground)
+	r.mark.Refresh()
 	r.ground.FillColor = color.Transparent
 	r.ground.StrokeWidth = 0
 	if r.c.hovered {

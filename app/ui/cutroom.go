@@ -136,7 +136,7 @@ func (w *window) cutWishes() fyne.CanvasObject {
 	foot := container.New(layout.NewCustomPaddedVBoxLayout(6),
 		container.NewGridWrap(fyne.NewSize(planWide-28, 6*lineHeight()), c.notes), c.write, c.print)
 	return container.New(layout.NewCustomPaddedLayout(12, 14, 14, 14),
-		container.NewBorder(nil, foot, nil, nil, container.NewVScroll(wishes)))
+		container.NewBorder(nil, foot, nil, nil, w.tips.scroll(wishes)))
 }
 
 // machineWords names one of the user's machines, or the one that nobody has described.

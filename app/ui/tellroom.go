@@ -138,7 +138,7 @@ func (w *window) tellWishes() fyne.CanvasObject {
 	foot := container.New(layout.NewCustomPaddedVBoxLayout(6), container.New(&linesLayout{3}, t.notes), t.pdf, t.html)
 	return container.New(layout.NewCustomPaddedLayout(12, 14, 14, 8),
 		container.NewBorder(nil, container.New(layout.NewCustomPaddedLayout(0, 0, 0, 6), foot), nil, nil,
-			container.NewVScroll(container.New(layout.NewCustomPaddedLayout(0, 0, 0, 12), wishes))))
+			w.tips.scroll(container.New(layout.NewCustomPaddedLayout(0, 0, 0, 12), wishes))))
 }
 
 // lightSelect chooses among the lights, by the names that people give them.

@@ -33,7 +33,7 @@ type tierList struct {
 
 func newTierList(bench *model.Bench, tips *tipLayer, say func(error), stray func(*fyne.KeyEvent)) *tierList {
 	l := &tierList{bench: bench, tips: tips, say: say, stray: stray, box: container.New(layout.NewCustomPaddedVBoxLayout(2))}
-	l.scroll = container.NewVScroll(container.New(layout.NewCustomPaddedLayout(0, 8, 0, 12), l.box))
+	l.scroll = tips.scroll(container.New(layout.NewCustomPaddedLayout(0, 8, 0, 12), l.box))
 	l.refresh()
 	return l
 }

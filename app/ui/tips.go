@@ -6,6 +6,7 @@ import (
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
+	"fyne.io/fyne/v2/container"
 	"fyne.io/fyne/v2/driver/desktop"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
@@ -38,6 +39,14 @@ func newTipLayer(do func(func()), in *words.Words) *tipLayer {
 	l.plate.Hide()
 	l.text.Hide()
 	return l
+}
+
+// scroll returns a scroller in which a tip goes when what it is about moves away from under
+// the pointer: the toolkit tells of no such leaving.
+func (l *tipLayer) scroll(content fyne.CanvasObject) *container.Scroll {
+	s := container.NewVScroll(content)
+	s.OnScrolled = func(fyne.Position) { l.leave() }
+	return s
 }
 
 // enter says that the pointer came to a control.

@@ -59,6 +59,22 @@ func TestTipsComeAndGo(t *testing.T) {
 	if r.tips.plate.Visible() {
 		t.Error("a tip comes after the pointer has left")
 	}
+	// Nor does it stay where what it is about goes away from under the pointer.
+	r.win.Resize(fyne.NewSize(1024, 300))
+	for name, away := range map[string]func(){
+		"scrolls": func() { r.list.scroll.Scrolled(&fyne.ScrollEvent{Scrolled: fyne.NewDelta(0, -40)}) },
+		"leaves":  func() { r.enter(tuneRoom); r.enter(lookRoom) },
+	} {
+		r.tips.show(r.row(t, "C1").slider, r.words.Say(tipSlider))
+		if !r.tips.plate.Visible() {
+			t.Fatal("no tip is shown")
+		}
+		away()
+		if r.tips.plate.Visible() {
+			t.Errorf("the tip stays when its control %s", name)
+		}
+	}
+	r.win.Resize(fyne.NewSize(1360, 860))
 	row := r.grid.row[0]
 	over(row)
 	r.until(t, "a tip", r.tips.plate.Visible)

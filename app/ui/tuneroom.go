@@ -79,7 +79,7 @@ func (w *window) buildTuneRoom() fyne.CanvasObject {
 	t.begin = widget.NewButton(w.words.Say("Search"), w.beginTune)
 	t.begin.Importance = widget.HighImportance
 	left := pane(container.New(layout.NewCustomPaddedLayout(12, 12, 14, 8),
-		container.NewBorder(nil, container.New(layout.NewCustomPaddedLayout(8, 0, 0, 6), t.begin), nil, nil, container.NewVScroll(question))))
+		container.NewBorder(nil, container.New(layout.NewCustomPaddedLayout(8, 0, 0, 6), t.begin), nil, nil, w.tips.scroll(question))))
 	t.box = container.New(&sideLayout{width: tuneWide}, left, pane(w.tuneAnswer()))
 	w.refreshTune()
 	return t.box

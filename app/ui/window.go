@@ -342,6 +342,7 @@ func gap(width float32) fyne.CanvasObject {
 func (w *window) enter(r room) {
 	if r != w.room {
 		w.win.Canvas().Unfocus() // what was typed there is taken; keys are the new room's
+		w.tips.leave()
 	}
 	w.room = r
 	w.cutting.toPrint = false
