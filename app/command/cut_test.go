@@ -12,10 +12,24 @@ import (
 	"testing"
 )
 
+// ownSettings gives the test an empty folder of settings, on any system, and returns it.
+func ownSettings(t *testing.T) string {
+	t.Helper()
+	folder := t.TempDir()
+	for _, place := range []string{"XDG_CONFIG_HOME", "AppData", "HOME"} {
+		t.Setenv(place, folder)
+	}
+	config, err := os.UserConfigDir()
+	if err != nil {
+		t.Fatal(err)
+	}
+	return config
+}
+
 // cutInto runs cut without maps, which cost most of its time, into a fresh folder.
 func cutInto(t *testing.T, args ...string) (outcome, string) {
 	t.Helper()
-	t.Setenv("XDG_CONFIG_HOME", t.TempDir())
+	ownSettings(t)
 	folder := t.TempDir()
 	return runCommand(append([]string{"cut", "--no-maps", "--out", folder}, args...)...), folder
 }
@@ -127,8 +141,7 @@ func TestCutPicturesOpen(t *testing.T) {
 }
 
 func TestCutForAMachine(t *testing.T) {
-	config := t.TempDir()
-	t.Setenv("XDG_CONFIG_HOME", config)
+	config := ownSettings(t)
 	machines := filepath.Join(config, "pavilight", "machines")
 	if err := os.MkdirAll(machines, 0o755); err != nil {
 		t.Fatal(err)

@@ -188,7 +188,7 @@ func TestSceneFaults(t *testing.T) {
 
 // TestOwnMaterials takes a material of the user's own, for stone and surrounding.
 func TestOwnMaterials(t *testing.T) {
-	t.Setenv("XDG_CONFIG_HOME", t.TempDir())
+	ownSettings(t)
 	own := file(t, "own.toml", `materials = 1
 
 [[material]]

@@ -3,8 +3,11 @@
 package disk
 
 import (
+	"errors"
+	"fmt"
 	"io"
 	"io/fs"
+	"math/rand/v2"
 	"os"
 	"path/filepath"
 	"runtime"
@@ -95,15 +98,9 @@ func replace(path string, write func(io.Writer) error, mayTake func(target strin
 	if err := mayTake(target); err != nil {
 		return err
 	}
-	// Where it can, the new file stays open, and with that claimed, until it bears its name:
-	// nobody takes it for a leftover. What it holds is on the disk since Sync.
-	if !renamesOpenFiles {
-		release()
-		if err := temporary.Close(); err != nil {
-			return err
-		}
-	}
-	if err := os.Rename(temporary.Name(), target); err != nil {
+	// The new file stays open, and with that claimed, until it bears its name: nobody takes
+	// it for a leftover. What it holds is on the disk since Sync.
+	if err := rename(temporary.Name(), target); err != nil {
 		return err
 	}
 	if folder, err := os.Open(folder); err == nil {
@@ -112,9 +109,6 @@ func replace(path string, write func(io.Writer) error, mayTake func(target strin
 	}
 	return nil
 }
-
-// renamesOpenFiles tells whether a file that is open can take the name of another that is.
-const renamesOpenFiles = runtime.GOOS != "windows"
 
 // newName is the pattern for the new files that are to replace a file; they are hidden
 // and end in .new, so that no dialog and no shell pattern takes one for a plan.
@@ -129,8 +123,12 @@ func newName(base string) string {
 // createHeld creates a new file that is locked while it is open, which tells it from one
 // that a killed program left behind.
 func createHeld(folder, pattern string) (*os.File, error) {
+	before, after, _ := strings.Cut(pattern, "*")
 	for try := 1; ; try++ {
-		f, err := os.CreateTemp(folder, pattern)
+		f, err := createNew(filepath.Join(folder, fmt.Sprint(before, rand.Int64N(1e10)+1, after)))
+		if errors.Is(err, fs.ErrExist) && try < mostTries {
+			continue
+		}
 		if err != nil {
 			return nil, err
 		}
@@ -206,7 +204,7 @@ func sweepOne(path string) {
 			return
 		}
 	}
-	if !renamesOpenFiles {
+	if !removesOpenFiles {
 		f.Close()
 	}
 	os.Remove(path)

@@ -29,7 +29,10 @@ func TestPages(t *testing.T) {
 	for _, page := range guide.Pages() {
 		t.Run(page.File, func(t *testing.T) {
 			t.Chdir(t.TempDir())
-			t.Setenv("XDG_CONFIG_HOME", t.TempDir())
+			settings := t.TempDir()
+			for _, place := range []string{"XDG_CONFIG_HOME", "AppData", "HOME"} { // by the system
+				t.Setenv(place, settings)
+			}
 			commands := 0
 			for _, part := range page.Parts {
 				switch part.Kind {
@@ -105,7 +108,7 @@ func console(t *testing.T, text string) (commands int) {
 			t.Errorf("%s: exit status %d\n%s", line, status, complaints.String())
 		}
 		commands++
-		compare(t, line, strings.Split(strings.TrimSpace(shown), "\n"), strings.Split(out.String(), "\n"))
+		compare(t, line, strings.Split(strings.TrimSpace(shown), "\n"), strings.Split(filepath.ToSlash(out.String()), "\n"))
 	}
 	return commands
 }

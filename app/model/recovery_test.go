@@ -90,7 +90,9 @@ func TestTheNewestIsOfferedFirst(t *testing.T) {
 		}
 		r.Close()
 	}
-	found, err := NewRecovery(folder).Find()
+	next := NewRecovery(folder)
+	defer next.Close()
+	found, err := next.Find()
 	if err != nil || len(found) != 4 {
 		t.Fatalf("found %v, %v", found, err)
 	}

@@ -9,8 +9,9 @@ import (
 
 func TestOpen(t *testing.T) {
 	config := t.TempDir()
-	t.Setenv("XDG_CONFIG_HOME", config)
-	t.Setenv("HOME", config)
+	for _, place := range []string{"XDG_CONFIG_HOME", "AppData", "HOME"} { // by the system
+		t.Setenv(place, config)
+	}
 	plain, err := Open("")
 	if err != nil {
 		t.Fatal(err)

@@ -91,6 +91,7 @@ func (r *Run) Go(ctx context.Context) (*Results, error) {
 		if err := write(r.Path, head, rows); err != nil {
 			return nil, err
 		}
+		notes.close() // not every system removes what is open
 		r.clear(head)
 	}
 	return &Results{Identity: r.Identity, lines: rows}, nil
@@ -198,7 +199,7 @@ func (n *notebook) note(text []byte) error {
 
 func (n *notebook) close() {
 	if n.f != nil {
-		n.f.Close()
+		n.f.Close() // twice does no harm
 	}
 }
 

@@ -125,7 +125,7 @@ func TestMemoryFaults(t *testing.T) {
 		"notes without an end": {write("short", "dear diary"), "a plan", "nothing that tuning saw"},
 		"another plan":         {good, "another plan", "another plan, goal or set of limits"},
 		"a folder":             {folder, "a plan", folder},
-		"no such folder":       {filepath.Join(folder, "a", "b"), "a plan", "no such file"},
+		"no such folder":       {filepath.Join(folder, "a", "b"), "a plan", filepath.Join(folder, "a", "b")},
 	} {
 		j := plainJudge(span(2, -2, 2, 0), 0, func([]float64) float64 { return 0 })
 		j.Material = material(t, "quartz")
