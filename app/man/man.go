@@ -58,6 +58,9 @@ func Page(grammar *kong.Application) []byte {
 	}
 	p.macro("SH", "FILES")
 	p.tagged("~/.config/pavilight/materials.toml", "Materials of your own.")
+	p.tagged("~/.config/pavilight/machines/NAME.toml", "Machines of your own, for cut --machine NAME.")
+	p.tagged("/usr/share/doc/pavilight/guide", "The guide, a page for each task, where a package put it there.")
+	p.tagged("/usr/share/doc/pavilight/examples", "Sample plans, likewise.")
 	p.macro("SH", "EXAMPLES")
 	for _, e := range Examples {
 		p.text(e.Why)
