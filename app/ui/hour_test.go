@@ -1,3 +1,5 @@
+//go:build unix
+
 package ui
 
 import (
@@ -97,18 +99,6 @@ type worked struct {
 // either half a degree off. The last is only looked at.
 func workedPlans() []worked {
 	return []worked{{"cushion.toml", 43}, {"octagon.toml", 57}, {"round-chequer.toml", 38}, {"round.toml", 41.5}}
-}
-
-// copyPlan puts a fresh copy of a sample into the folder.
-func copyPlan(t *testing.T, name, folder string) {
-	t.Helper()
-	text, err := os.ReadFile(filepath.Join("../../testdata/plans", name))
-	if err == nil {
-		err = os.WriteFile(filepath.Join(folder, name), text, 0o600)
-	}
-	if err != nil {
-		t.Fatal(err)
-	}
 }
 
 // work does one round of what people do in the window, ended at rest with the last plan.

@@ -29,8 +29,7 @@ func TestTwoWindowsOnOneFile(t *testing.T) {
 	var windows [2]*rig
 	for i := range windows {
 		r := newRig(t, testdata.Bundled)
-		r.beginKeeping(own)
-		defer r.endKeeping()
+		r.keepFor(t, own)
 		r.open(path)
 		stage(r, "opened")
 		windows[i] = r
@@ -77,14 +76,14 @@ func TestTwoWindowsOnOneFile(t *testing.T) {
 func TestWorkThatWasTakenUpIsNotLostAgain(t *testing.T) {
 	folder := t.TempDir()
 	r := newRig(t, testdata.Bundled)
-	r.beginKeeping(folder)
+	r.keepFor(t, folder)
 	typeInto(r, r.row(t, "P1").field, "41,25")
 	r.keepNow()
 	r.endKeeping()
 	r.keeper.recovery.Close()
 
 	next := newRig(t, testdata.Bundled)
-	next.beginKeeping(folder)
+	next.keepFor(t, folder)
 	next.keeper.keeping.Store(true) // busy, so that nothing is kept just now
 	found, err := next.keeper.recovery.Find()
 	if err != nil || len(found) != 1 {
@@ -101,8 +100,7 @@ func TestWorkThatWasTakenUpIsNotLostAgain(t *testing.T) {
 	next.keeper.recovery.Close() // as a kill does
 
 	last := newRig(t, testdata.Bundled)
-	last.beginKeeping(folder)
-	defer last.endKeeping()
+	last.keepFor(t, folder)
 	if found, err := last.keeper.recovery.Find(); err != nil || len(found) != 1 || found[0].Plan.Tiers[0].Angle.Degrees() != 41.25 {
 		t.Errorf("after another end found %v, %v", found, err)
 	}

@@ -290,6 +290,18 @@ func (p *program) ended() {
 // leastColours is what a window with six maps shows by far; an empty one has a few.
 const leastColours = 300
 
+// copyPlan puts a fresh copy of a sample into the folder.
+func copyPlan(t *testing.T, name, folder string) {
+	t.Helper()
+	text, err := os.ReadFile(filepath.Join("../../testdata/plans", name))
+	if err == nil {
+		err = os.WriteFile(filepath.Join(folder, name), text, 0o600)
+	}
+	if err != nil {
+		t.Fatal(err)
+	}
+}
+
 // TestRealWindow opens, types, drags, undoes, saves and closes as a person does.
 func TestRealWindow(t *testing.T) {
 	s := newScreen(t, 1360, 860)

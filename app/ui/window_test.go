@@ -74,6 +74,17 @@ func (r *rig) post(f func()) {
 	}
 }
 
+// keepFor begins keeping; at the test's end every claim is given up, as at the program's.
+func (r *rig) keepFor(t *testing.T, folder string) {
+	t.Helper()
+	r.beginKeeping(folder)
+	t.Cleanup(func() {
+		r.endKeeping()
+		r.keeper.recovery.Close()
+		r.keeper.claims.Release()
+	})
+}
+
 func (r *rig) drain() {
 	r.mu.Lock()
 	jobs := r.jobs
@@ -529,8 +540,7 @@ func TestFileChangedByOtherHands(t *testing.T) {
 	path := filepath.Join(t.TempDir(), "mine.toml")
 	r.write(path, func() {})
 	r.until(t, "the save", func() bool { return slices.Contains(r.told, "saved") })
-	r.beginKeeping(t.TempDir())
-	defer r.endKeeping()
+	r.keepFor(t, t.TempDir())
 	text, err := os.ReadFile(path)
 	if err != nil {
 		t.Fatal(err)
@@ -552,14 +562,13 @@ func TestFileChangedByOtherHands(t *testing.T) {
 func TestUnsavedWorkIsOfferedAtTheNextStart(t *testing.T) {
 	r := newRig(t, testdata.Bundled)
 	folder := t.TempDir()
-	r.beginKeeping(folder)
+	r.keepFor(t, folder)
 	typeInto(r, r.row(t, "P1").field, "41,25")
 	r.keepNow() // as when a signal ends the program
 	r.endKeeping()
 	r.keeper.recovery.Close() // as the program's end does
 	again := newRig(t, testdata.Bundled)
-	again.beginKeeping(folder)
-	defer again.endKeeping()
+	again.keepFor(t, folder)
 	again.offerRecovered()
 	if len(again.told) == 0 || again.told[len(again.told)-1] != "offered" {
 		t.Fatalf("the window tells %v", again.told)
