@@ -22,7 +22,7 @@ type tuneGoal struct {
 	Turn     float64 `type:"number" least:"-360" most:"360" unit:"degrees" placeholder:"DEG" help:"Toward which azimuth it is rocked, -360 to 360 degrees (0)."`
 	Light    string  `default:"even" type:"word" placeholder:"NAMES" help:"The lights for luminance, dark, contrast, fire and sparkle: ${lights}, with commas between (${default})."`
 	Worst    bool    `help:"The worst surrounding, tilt and light counts, not their mean."`
-	Steady   float64 `type:"number" least:"0" most:"5" unit:"degrees" placeholder:"DEG" help:"A stone counts no more than the worst of those with one angle off by so much, 0 to 5 degrees: keeps off cliffs, and takes several times as long (0)."`
+	Steady   float64 `type:"number" least:"0" most:"2" unit:"degrees" placeholder:"DEG" help:"A stone counts no more than the worst of those with one angle off by up to so much, 0 to 2 degrees, seen every 0.1 degrees: keeps off cliffs, and takes several times as long (0)."`
 	Head     float64 `default:"10" type:"number" least:"0" most:"90" unit:"degrees" placeholder:"DEG" help:"Half-angle of the cone that the viewer's head blocks, 0 to 90 degrees (${default})."`
 	Distance float64 `type:"number" least:"0" most:"100000" unit:"mm" placeholder:"MM" help:"Distance of the eye for what is seen; 0 is one foot (0)."`
 }

@@ -83,7 +83,7 @@ complete -c pavilight -n '__fish_seen_subcommand_from tune' -l tilts -x -d 'The 
 complete -c pavilight -n '__fish_seen_subcommand_from tune' -l turn -x -d 'Toward which azimuth it is rocked, -360 to 360 degrees (0)'
 complete -c pavilight -n '__fish_seen_subcommand_from tune' -l light -x -a 'even overcast clear sun room lamps ring' -d 'The lights for luminance, dark, contrast, fire and sparkle'
 complete -c pavilight -n '__fish_seen_subcommand_from tune' -l worst -d 'The worst surrounding, tilt and light counts, not their mean'
-complete -c pavilight -n '__fish_seen_subcommand_from tune' -l steady -x -d 'A stone counts no more than the worst of those with one angle off by so much, 0 to 5 degrees'
+complete -c pavilight -n '__fish_seen_subcommand_from tune' -l steady -x -d 'A stone counts no more than the worst of those with one angle off by up to so much, 0 to 2 degrees, seen every 0.1 degrees'
 complete -c pavilight -n '__fish_seen_subcommand_from tune' -l head -x -d 'Half-angle of the cone that the viewers head blocks, 0 to 90 degrees (10)'
 complete -c pavilight -n '__fish_seen_subcommand_from tune' -l distance -x -d 'Distance of the eye for what is seen; 0 is one foot (0)'
 complete -c pavilight -n '__fish_seen_subcommand_from tune' -l girdle-mm -x -d 'The girdle is nowhere thinner, 0 to 100 mm (0)'

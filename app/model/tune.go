@@ -88,7 +88,7 @@ type Tune struct {
 	Tilts    []facets.Angle
 	Worst    bool
 	Step     float64 // degrees
-	Steady   float64 // degrees; a stone counts no more than the worst with one angle off by so much, 0 for none
+	Steady   float64 // degrees; a stone counts no more than the worst with one angle off by up to so much, 0 for none
 	Machine  tune.Machine
 	Draws    int            // of TellErrors
 	Cells    int            // of ShowField, along each edge; 0 for the usual number

@@ -146,7 +146,7 @@ func TestTuneRoomForgives(t *testing.T) {
 		t.Fatalf("trouble %v, outcome %+v", room.Trouble, room.Outcome)
 	}
 	o := room.Outcome
-	words := "With one angle off by 1° the goal is at worst " + room.withError(o.Start.Score, o.Start.Error) + " as it stands, " +
+	words := "With one angle off by up to 1° the goal is at worst " + room.withError(o.Start.Score, o.Start.Error) + " as it stands, " +
 		room.withError(o.Best.Score, o.Best.Error) + " at the best."
 	if all := strings.Join(room.Verdict(), "\n"); !strings.Contains(all, words) {
 		t.Errorf("no word of %q in\n%s", words, all)

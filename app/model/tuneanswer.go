@@ -206,7 +206,7 @@ func (t *Tune) outcomeWords(o *tune.Outcome, vs []tune.Variable) (lines []string
 		lines = append(lines, t.words.Say("Nothing better was found than the stone as it stands, beyond what chance explains."))
 	}
 	if t.steadyUsed > 0 && o.Start.Seen && o.Best.Seen {
-		lines = append(lines, t.words.Say("With one angle off by %g° the goal is at worst %s as it stands, %s at the best.",
+		lines = append(lines, t.words.Say("With one angle off by up to %g° the goal is at worst %s as it stands, %s at the best.",
 			t.steadyUsed, t.withError(o.Start.Score, o.Start.Error), t.withError(o.Best.Score, o.Best.Error)))
 	}
 	for i, v := range vs {

@@ -52,7 +52,7 @@ func tipOf(name words.Key) words.Key {
 		"First":       "What the search makes as good as it can",
 		"And":         "A second goal, weighed against the first",
 		"counting":    "How many times as much as the first the second goal counts",
-		"Forgives":    "Seeks a stone that stays good with any one angle off by so much: it counts as its worst neighbour does. Takes several times as long",
+		"Forgives":    "Seeks a stone that stays good with any one angle off by up to so much, tried every 0.1°: it counts as its worst neighbour does. Takes several times as long",
 		"Indices":     "In which order the facets of a tier stand on the sheet",
 		"Other gears": "The indices are printed for these gears, too; Enter takes them",
 		"For":         "Plain words for a client, more numbers for a colleague",

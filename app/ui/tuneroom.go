@@ -166,7 +166,7 @@ func (w *window) tuneQuestion() fyne.CanvasObject {
 		t.tune.Light, t.lit = l, name
 	})
 	t.light = row("Light", light)
-	t.steady = w.limitRow(row, "Forgives", "° off, either way", func() float64 { return t.tune.Steady }, func(v float64) { t.tune.Steady = v }, 5, 0.1)
+	t.steady = w.limitRow(row, "Forgives", "° off, either way", func() float64 { return t.tune.Steady }, func(v float64) { t.tune.Steady = v }, tune.MostSteady.Degrees(), 0.1)
 	t.goals = column(heading("What it shall be good at"), row("First", first), row("And", second), t.other, t.light, t.steady)
 
 	t.seen = container.New(layout.NewCustomPaddedVBoxLayout(0))

@@ -334,3 +334,38 @@ func TestSteady(t *testing.T) {
 		}
 	}
 }
+
+// A pit between the stone and the end of what is to be forgiven counts, and the more is to
+// be forgiven the less a stone is worth.
+func TestSteadySeesWhatLiesBetween(t *testing.T) {
+	vs := []Variable{{Name: "a", Unit: "degrees", Low: 0, High: 3, Now: 1, Step: 0.1}}
+	j := plainJudge(vs, 0, func(x []float64) float64 { // of 1 away from the pit, of 9 in it
+		if math.Abs(x[0]-1.3) < 0.06 {
+			return 9
+		}
+		return 1
+	})
+	last := math.Inf(1)
+	for steady, want := range map[float64]float64{0: -1, 0.2: -1, 0.3: -9, 0.5: -9, 1: -9} {
+		j.Steady = facets.Angle(steady) * facets.Degree
+		got, err := j.try(context.Background(), []float64{1}, claims)
+		if err != nil || got.Score != want {
+			t.Errorf("steady within %g: %v, %v, want %v", steady, got.Score, err, want)
+		}
+	}
+	for _, steady := range []float64{0, 0.1, 0.25, 0.5, 1, 2} {
+		j.Steady = facets.Angle(steady) * facets.Degree
+		got, err := j.try(context.Background(), []float64{1.9}, claims)
+		if err != nil || got.Score > last {
+			t.Errorf("steady within %g: %v after %v, %v", steady, got.Score, last, err)
+		}
+		last = got.Score
+	}
+	if last != -9 {
+		t.Errorf("with the pit in reach the score is %v", last)
+	}
+	j.Steady = MostSteady + facets.Degree
+	if err := j.check(); err == nil {
+		t.Error("any slip can be asked for")
+	}
+}

@@ -146,7 +146,7 @@ func (j *judge) try(ctx context.Context, values []float64, e effort) (Trial, err
 	if err != nil || j.Steady == 0 || !t.Seen {
 		return t, err
 	}
-	for _, x := range j.nearby(values, j.Steady.Degrees()) {
+	for _, x := range j.within(values, j.Steady.Degrees()) {
 		beside, err := j.tryAlone(ctx, x, e)
 		if err == nil && !beside.Seen { // limits are for the stone itself
 			free := e
@@ -157,8 +157,8 @@ func (j *judge) try(ctx context.Context, values []float64, e effort) (Trial, err
 			return t, err
 		}
 		if !beside.Seen {
-			t.Fit, t.Short = false, t.Short+noStone/2
-			t.Words = append(t.Words, "a small error beside it leaves no such stone: "+beside.Words[0])
+			t.Fit, t.Seen, t.Short = false, false, t.Short+noStone/2
+			t.Words = append(t.Words, "an error that is to be forgiven leaves none: "+beside.Words[0])
 			return t, nil
 		}
 		if beside.Score < t.Score {
@@ -184,6 +184,19 @@ func (j *judge) nearby(x []float64, degrees float64) [][]float64 {
 		}
 	}
 	return all
+}
+
+// within returns the values with one variable off by up to so many degrees either way, a
+// SlipStep apart and at the ends: a cliff may lie between. Others are off by their step.
+func (j *judge) within(x []float64, degrees float64) (all [][]float64) {
+	for by := SlipStep; by < degrees-1e-9; by += SlipStep {
+		for k, y := range j.nearby(x, by) {
+			if j.Variables[k/2].Unit == "degrees" {
+				all = append(all, y)
+			}
+		}
+	}
+	return append(all, j.nearby(x, degrees)...)
 }
 
 // tryAlone judges one choice of values.

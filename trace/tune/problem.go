@@ -140,12 +140,20 @@ type Problem struct {
 	Head      facets.Angle  // half-angle of the viewer's head
 	Distance  float64       // of the eye, mm, for what is seen; 0 means UsualDistance
 	// Steady, where above 0, has a stone count no more than the worst of those whose angles
-	// are off by so much, one at a time: a best that stands at a cliff is no best. Other
-	// variables are off by their step.
+	// are off by up to so much, one at a time, seen every SlipStep: a best that stands at a
+	// cliff is no best. Other variables are off by their step.
 	Steady  facets.Angle
 	Seed    uint64
 	Workers int // 0 for all cores
 }
+
+// MostSteady is the greatest slip that a search can be asked to forgive, and SlipStep, in
+// degrees, how far apart the slips lie that it sees. What light does between two of them
+// stays unseen.
+const (
+	MostSteady = 2 * facets.Degree
+	SlipStep   = 0.1
+)
 
 // UsualDistance is how far an eye is taken to be from the stone, in mm: one foot, as
 // Harding (1975) took it.
@@ -175,8 +183,8 @@ func (p *Problem) check() error {
 	if !(p.Distance >= 0) || math.IsInf(p.Distance, 0) {
 		fault("the eye's distance is %g mm; give a positive number, or 0 for the usual one", p.Distance)
 	}
-	if !(p.Steady >= 0 && p.Steady < 10*facets.Degree) {
-		fault("steady within %v: use 0 to 10 degrees", p.Steady)
+	if !(p.Steady >= 0 && p.Steady <= MostSteady) {
+		fault("steady within %v: use 0 to %v", p.Steady, MostSteady)
 	}
 	if len(p.Goal.Cases) == 0 {
 		fault("no surrounding is named in which the stone is to be good")
