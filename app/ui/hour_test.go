@@ -52,8 +52,9 @@ func (p *program) state() state {
 }
 
 // choose opens the file of the plan's folder that comes as the given one, by the toolkit's
-// own dialog, which shows them in rows of icons after one for the folder above.
-func (p *program) choose(number int) {
+// own dialog, which shows them in rows of icons after one for the folder above. It waits for
+// the maps, for the places of the plan's tiers, which the entered room tells, and for more.
+func (p *program) choose(number int, more ...string) {
 	p.t.Helper()
 	p.screen.do("key", "ctrl+o")
 	p.until("choosing")
@@ -61,7 +62,7 @@ func (p *program) choose(number int) {
 	p.screen.do("mousemove", strconv.Itoa(left+(number+1)*pitch), strconv.Itoa(top), "click", "1")
 	p.screen.do("mousemove", "1098", "720", "click", "1") // Open
 	p.until("opened")
-	p.until("refined")
+	p.until(append(more, "refined", "entered")...)
 }
 
 // drag moves the pointer from one place by steps, with the button down.
@@ -171,8 +172,7 @@ func (p *program) work(round int, folder string) {
 		}
 		os.Remove(path)
 	}
-	p.choose(len(plans) - 1)
-	p.until("rocked")
+	p.choose(len(plans)-1, "rocked")
 	time.Sleep(time.Second)
 }
 

@@ -71,6 +71,7 @@ func (f *numberField) show(v float64) {
 	f.value = v
 	if !typing {
 		f.put(v)
+		f.mark(nil)
 	}
 }
 
@@ -107,10 +108,27 @@ func (f *numberField) revert() {
 }
 
 func (f *numberField) tell(err error) {
-	f.SetValidationError(err)
+	f.mark(err)
 	if f.trouble != nil {
 		f.trouble(err)
 	}
+}
+
+// refused reports whether what stands in the field was not taken.
+func (f *numberField) refused() bool { return f.Validator != nil }
+
+// mark marks the field, or takes the mark away. The toolkit marks only what a validator
+// refuses, and gives a tick to what one does not.
+func (f *numberField) mark(err error) {
+	if err == nil && !f.refused() {
+		return
+	}
+	f.Validator = nil
+	if err != nil {
+		f.Validator = func(string) error { return err }
+	}
+	f.AlwaysShowValidationError = err != nil
+	f.SetValidationError(err)
 }
 
 // nudge moves the number by so many steps.

@@ -12,6 +12,7 @@ import (
 	"os"
 	"os/exec"
 	"path/filepath"
+	"slices"
 	"strconv"
 	"strings"
 	"sync"
@@ -189,21 +190,19 @@ func (p *program) listen(from io.Reader) {
 	close(p.stages)
 }
 
-// until waits for the window to tell a stage.
-func (p *program) until(stage string) {
+// until waits for the window to tell stages, all of them and in whatever order.
+func (p *program) until(stages ...string) {
 	p.t.Helper()
 	timer := time.After(p.patience)
-	for {
+	for len(stages) > 0 {
 		select {
 		case told, open := <-p.stages:
-			if told == stage {
-				return
-			}
+			stages = slices.DeleteFunc(slices.Clone(stages), func(stage string) bool { return stage == told })
 			if !open {
-				p.t.Fatalf("the program ended before %q:\n%s", stage, p.said())
+				p.t.Fatalf("the program ended before %q:\n%s", stages, p.said())
 			}
 		case <-timer:
-			p.t.Fatalf("waited %v in vain for %q:\n%s", p.patience, stage, p.said())
+			p.t.Fatalf("waited %v in vain for %q:\n%s", p.patience, stages, p.said())
 		}
 	}
 }

@@ -260,3 +260,37 @@ func TestRoomsFitTheWindow(t *testing.T) {
 		inside("next", c.film.next)
 	}
 }
+
+// No search begins while a number that is not taken stands in the question: its answer would
+// be to another one. The field is marked and has the focus, and the reason is told.
+func TestNoSearchWithARefusedNumber(t *testing.T) {
+	r := newRig(t, testdata.Bundled)
+	r.refined(t)
+	r.enter(tuneRoom)
+	r.drain()
+	limit, forgives := r.tuning.fields[0][1], r.tuning.others[1]
+	for _, tt := range []struct {
+		field      *numberField
+		text, want string
+	}{{limit, "abc", "not a number"}, {forgives, "20", "Forgives: use 0 to 2"}} {
+		typeInto(r, tt.field, tt.text)
+		r.win.Canvas().Unfocus()
+		if !tt.field.refused() || tt.field.Text != tt.text {
+			t.Fatalf("%q stands there as %q, refused %v", tt.text, tt.field.Text, tt.field.refused())
+		}
+		r.say(nil)
+		r.tuning.begin.OnTapped()
+		if r.tuning.tune.Running || r.win.Canvas().Focused() != tt.field || !strings.Contains(r.message.text, tt.want) {
+			t.Errorf("%q: running %v, focus %T, message %q", tt.text, r.tuning.tune.Running, r.win.Canvas().Focused(), r.message.text)
+		}
+		tt.field.revert()
+		if tt.field.refused() {
+			t.Errorf("%q: taken back it is still marked", tt.text)
+		}
+	}
+	r.tuning.begin.OnTapped()
+	if !r.tuning.tune.Running {
+		t.Errorf("no search begins: %v", r.tuning.tune.Trouble)
+	}
+	r.tuning.tune.Stop()
+}

@@ -46,7 +46,8 @@ type tuneBench struct {
 	choices *fyne.Container
 	shape   string // of the choices that were built
 	checks  []*widget.Check
-	fields  [][2]*numberField
+	fields  [][2]*numberField // the limits of the choices
+	others  []*numberField    // all other numbers of the question
 	record  *widget.Check
 	lit     string // name of the light
 	begin   *widget.Button
@@ -74,7 +75,7 @@ func (w *window) buildTuneRoom() fyne.CanvasObject {
 		t.tune = model.NewTune(w.do, w.refreshTune)
 	}
 	t.tune.SetWords(w.words)
-	t.seenIn, t.shape = "", ""
+	t.seenIn, t.shape, t.others = "", "", nil
 	question := w.tuneQuestion()
 	t.begin = widget.NewButton(w.words.Say("Search"), w.beginTune)
 	t.begin.Importance = widget.HighImportance
@@ -114,7 +115,12 @@ func (w *window) tuneQuestion() fyne.CanvasObject {
 	}
 	task := widget.NewSelect(tasks, nil)
 	task.SetSelectedIndex(slices.Index(model.TuneTasks(), t.tune.Task))
-	task.OnChanged = func(string) { t.tune.Ask(model.TuneTasks()[task.SelectedIndex()]) }
+	task.OnChanged = func(string) {
+		for f := t.refused(); f != nil; f = t.refused() {
+			f.revert() // it may not be asked for any more
+		}
+		t.tune.Ask(model.TuneTasks()[task.SelectedIndex()])
+	}
 
 	none := w.words.Say("nothing else")
 	var goals []string
@@ -153,6 +159,7 @@ func (w *window) tuneQuestion() fyne.CanvasObject {
 	}
 	counts.trouble = w.say
 	counts.show(weight)
+	t.others = append(t.others, counts)
 	t.other = row("counting", container.NewBorder(nil, nil, nil, label("times"), counts))
 	if t.lit == "" {
 		t.lit = "even"
@@ -265,6 +272,7 @@ func (w *window) limitRow(row func(words.Key, fyne.CanvasObject) *fyne.Container
 	field.trouble = w.say
 	field.tip = tip{w.tips, tipLimit}
 	field.show(get())
+	w.tuning.others = append(w.tuning.others, field)
 	return row(name, container.NewBorder(nil, nil, container.NewGridWrap(fyne.NewSize(74, field.MinSize().Height), field), nil,
 		newLine(colourDim, theme.SizeNameText).with(w.words.Say(unit))))
 }
@@ -358,7 +366,26 @@ func (w *window) beginTune() {
 		return
 	}
 	w.commitTyping()
+	if f := t.refused(); f != nil { // an answer would be to another question than the one that stands there
+		w.win.Canvas().Focus(f)
+		f.settle() // tells why, again
+		return
+	}
 	t.tune.Begin()
+}
+
+// refused returns a number of the question that was not taken, nil if all were.
+func (t *tuneBench) refused() *numberField {
+	all := slices.Clone(t.others)
+	for _, pair := range t.fields {
+		all = append(all, pair[:]...)
+	}
+	for _, f := range all {
+		if f.refused() {
+			return f
+		}
+	}
+	return nil
 }
 
 // recordWords offers to keep a record, or names the one that is kept.
