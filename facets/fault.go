@@ -9,7 +9,7 @@ import (
 // Fault is one thing wrong with an input, told to the person who must mend it:
 // where it stands, what was written, why it cannot be taken, and the remedy.
 type Fault struct {
-	File   string // as the user named it
+	File   string // as the user named it; empty for a plan that no file holds as it is
 	Line   int    // 1-based; 0 where no line can be named
 	Tier   string // tier's name; empty where the fault belongs to no tier
 	Field  string // key or part of the file
@@ -21,11 +21,13 @@ type Fault struct {
 // Error returns the fault in one line: file:line: tier "P1": angle "134": why; remedy.
 func (f *Fault) Error() string {
 	var b strings.Builder
-	b.WriteString(f.File)
-	if f.Line > 0 {
-		fmt.Fprintf(&b, ":%d", f.Line)
+	if f.File != "" {
+		b.WriteString(f.File)
+		if f.Line > 0 {
+			fmt.Fprintf(&b, ":%d", f.Line)
+		}
+		b.WriteString(": ")
 	}
-	b.WriteString(": ")
 	if f.Tier != "" {
 		fmt.Fprintf(&b, "tier %q: ", shorten(f.Tier))
 	}

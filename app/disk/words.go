@@ -54,7 +54,7 @@ func InWords(path string, err error) error {
 	case errors.Is(err, fs.ErrPermission):
 		return told("%s cannot be written to; save into another folder", folder)
 	case errors.Is(err, fs.ErrNotExist):
-		return told("the folder %s is not there; if it lies on a drive that was taken out, plug it in again, or save into another folder", folder)
+		return told("the folder %s is not there; if it lies on a drive that was taken out, plug it in again, else save into another folder, under a name without a slash", folder)
 	}
 	return told("%s could not be written: %v; save under another name", path, err)
 }

@@ -45,31 +45,30 @@ func ParseAngle(text string) (facets.Angle, error) {
 }
 
 // FormatAngle writes an angle in degrees with the two decimals that a cutter
-// sets, and more, up to six, where the angle has them.
+// sets, and more, up to four, where the angle has them: a scan's have many.
 func FormatAngle(a facets.Angle) string {
 	deg := a.Degrees()
-	const written = 5e-7 // half of the last decimal that is ever written
-	for decimals := 2; decimals < 6; decimals++ {
+	const most, written = 4, 5e-5 // half of the last decimal that is ever written
+	for decimals := 2; decimals < most; decimals++ {
 		text := strconv.FormatFloat(deg, 'f', decimals, 64)
 		if back, _ := strconv.ParseFloat(text, 64); math.Abs(back-deg) < written {
 			return text
 		}
 	}
-	return strconv.FormatFloat(deg, 'f', 6, 64)
+	return strconv.FormatFloat(deg, 'f', most, 64)
 }
 
-// ParseNumber reads a plain number with a point or a comma before its decimals
-// and with the unit after it or without.
+// ParseNumber reads a plain number, which may be negative, with a point or a comma before
+// its decimals and with the unit after it or without.
 func ParseNumber(text, unit string) (float64, error) {
 	text = strings.TrimSpace(strings.TrimSuffix(strings.TrimSpace(text), unit))
-	parts, err := numbersWithUnits(text)
-	if err != nil {
-		return 0, words.Errorf("%v; write it as 8.5 or 8,5", err)
+	plain := strings.NewReplacer(",", ".", "−", "-", "–", "-").Replace(text)
+	const letters, longest = "0123456789.+-eE", 24
+	v, err := strconv.ParseFloat(plain, 64)
+	if err != nil || strings.Trim(plain, letters) != "" || len(plain) > longest {
+		return 0, words.Errorf("%q is not a number; write it as 8.5 or 8,5", shorten(text))
 	}
-	if len(parts) != 1 || parts[0].unit != "" {
-		return 0, words.Errorf("%q is not a number; write it as 8.5 or 8,5", text)
-	}
-	return parts[0].value, nil
+	return v, nil
 }
 
 var (

@@ -57,7 +57,7 @@ func TestFormatAngle(t *testing.T) {
 		degrees float64
 		want    string
 	}{
-		{41.5, "41.50"}, {0, "0.00"}, {90, "90.00"}, {41.8125, "41.8125"}, {41.8123456789, "41.812346"}, {34.499, "34.499"},
+		{41.5, "41.50"}, {0, "0.00"}, {90, "90.00"}, {41.8125, "41.8125"}, {41.8123456789, "41.8123"}, {40.000004, "40.00"}, {34.499, "34.499"},
 	} {
 		if got := FormatAngle(facets.Angle(c.degrees) * facets.Degree); got != c.want {
 			t.Errorf("FormatAngle(%v°) = %q, want %q", c.degrees, got, c.want)
@@ -72,7 +72,8 @@ func TestParseNumber(t *testing.T) {
 		ok   bool
 	}{
 		{"8.5", 8.5, true}, {"8,5 mm", 8.5, true}, {"8.5mm", 8.5, true}, {"", 0, false}, {"8.5 ct", 0, false},
-		{"8 5", 0, false}, {"8.5°", 0, false},
+		{"8 5", 0, false}, {"8.5°", 0, false}, {"-5", -5, true}, {"−5,5", -5.5, true}, {"1e3", 1000, true}, {"0x10", 0, false},
+		{"inf", 0, false}, {"NaN", 0, false}, {"1e999", 0, false}, {strings.Repeat("1", 25), 0, false}, {"1.2.3", 0, false},
 	} {
 		got, err := ParseNumber(c.text, "mm")
 		if (err == nil) != c.ok || got != c.want {

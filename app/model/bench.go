@@ -84,7 +84,7 @@ func (b *Bench) MaterialOf(ref facets.MaterialRef) (*gems.Material, error) {
 // Open reads and solves the plan or scan at path on another goroutine and puts it on
 // the bench. If it cannot be had the bench stays as it is. A scan becomes a plan
 // that cuts the same solid, of the material and for the gear that were on the bench,
-// and is not saved yet. done is told how it went.
+// in millimetres, and has no file yet. done is told how it went.
 func (b *Bench) Open(path string, done func(error)) {
 	before := b.Doc.Plan()
 	go func() {
@@ -112,7 +112,7 @@ func (b *Bench) read(path string, before *facets.Plan) (*Document, error) {
 		if err != nil {
 			return nil, err
 		}
-		doc = newDocument(plan, "", disk.Stamp{}, false)
+		doc = NewDocument(plan, "")
 	} else {
 		disk.SweepBeside(path)
 		known := disk.StampOf(path) // before it is read: a change in between is told, not overlooked
@@ -342,4 +342,10 @@ func (b *Bench) Select(tier string) {
 
 // Troubles says why the present plan cannot be shown, one fault a line; empty when
 // it is shown.
-func (b *Bench) Troubles() []string { return InWords(b.words, b.Look.Trouble) }
+func (b *Bench) Troubles() []string {
+	err := b.Look.Trouble
+	if !b.Doc.inFile() {
+		err = withoutPlace(err)
+	}
+	return InWords(b.words, err)
+}

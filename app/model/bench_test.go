@@ -15,6 +15,7 @@ import (
 	"github.com/go-gl/mathgl/mgl64"
 
 	"pavilight/app/disk"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/testdata"
@@ -535,6 +536,34 @@ func TestEditsDuringASaveStayUnsaved(t *testing.T) {
 	})
 }
 
+// Faults of a plan that no file holds as it is name no file and no line.
+func TestFaultsNameTheFileThatHoldsThem(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) { // a place's goroutines are its own
+		p := newPlace(t)
+		tooSteep := func(plan *facets.Plan) {
+			for i := range plan.Tiers {
+				if plan.Tiers[i].Name == "P1" {
+					plan.Tiers[i].Angle = 89 * facets.Degree
+				}
+			}
+		}
+		p.Doc.Edit(words.Later("angle"), "", tooSteep)
+		_, p.Look.Trouble = p.subject(p.Doc.Plan())
+		if lines := p.Troubles(); len(lines) == 0 || strings.Contains(strings.Join(lines, ""), ".toml") || !strings.HasPrefix(lines[0], "tier ") {
+			t.Errorf("a plan that was changed: %q", lines)
+		}
+		// Saved as it is and read again, its faults stand in its file.
+		plan := p.Doc.Plan().Clone()
+		path := filepath.Join(t.TempDir(), "mine.toml")
+		plan.File = path
+		p.Doc = NewDocument(plan, path)
+		_, p.Look.Trouble = p.subject(plan)
+		if lines := p.Troubles(); len(lines) == 0 || !strings.HasPrefix(lines[0], "mine.toml:") {
+			t.Errorf("a plan in its file: %q", lines)
+		}
+	})
+}
+
 // A solid that is written as a scan and opened comes back as a plan of the same
 // volume; STL keeps 24 bits of each coordinate.
 func TestAScanBecomesAPlan(t *testing.T) {
@@ -567,7 +596,7 @@ func TestAScanBecomesAPlan(t *testing.T) {
 		if d := got.Measures.VolumeMM3/want.Measures.VolumeMM3 - 1; math.Abs(d) > float32Rounding {
 			t.Errorf("the volume is off by %g", d)
 		}
-		if !p.Doc.Modified() || p.Doc.Path != "" || got.Material.Key != "corundum" {
+		if p.Doc.Modified() || p.Doc.Path != "" || got.Material.Key != "corundum" {
 			t.Errorf("modified %v, path %q, material %s", p.Doc.Modified(), p.Doc.Path, got.Material.Key)
 		}
 		p.Look.Close()

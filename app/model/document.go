@@ -65,6 +65,12 @@ func (d *Document) RedoName() (words.Text, bool) { return d.history.redoName() }
 // Modified reports whether the plan differs from its file.
 func (d *Document) Modified() bool { return d.history.modified() }
 
+// inFile reports whether the plan stands in its file as it is, and was read from there, so
+// that its lines mean something.
+func (d *Document) inFile() bool {
+	return d.Path != "" && !d.Modified() && filepath.Base(d.Path) == filepath.Base(d.Plan().File)
+}
+
 // Title names the plan, with a star while it differs from its file.
 func (d *Document) Title(w *words.Words) string {
 	name := d.Plan().Name

@@ -15,31 +15,59 @@ func InWords(w *words.Words, err error) []string {
 	if err == nil {
 		return nil
 	}
+	faults := faultsOf(err)
+	if faults == nil {
+		return strings.Split(w.Error(err), "\n")
+	}
+	lines := make([]string, len(faults))
+	for i, f := range faults {
+		lines[i] = faultWords(w, f)
+	}
+	return lines
+}
+
+// faultsOf returns the faults of a plan or scan that an error tells of, nil if it tells of
+// something else.
+func faultsOf(err error) facets.Faults {
 	var faults facets.Faults
 	if errors.As(err, &faults) {
-		lines := make([]string, len(faults))
-		for i, f := range faults {
-			lines[i] = faultWords(w, f)
-		}
-		return lines
+		return faults
 	}
 	var one *facets.Fault
 	if errors.As(err, &one) {
-		return []string{faultWords(w, one)}
+		return facets.Faults{one}
 	}
-	return strings.Split(w.Error(err), "\n")
+	return nil
+}
+
+// withoutPlace returns the error without the file and the lines of its faults, for a plan
+// that no file holds as it is.
+func withoutPlace(err error) error {
+	faults := faultsOf(err)
+	if faults == nil {
+		return err
+	}
+	plain := make(facets.Faults, len(faults))
+	for i, f := range faults {
+		copied := *f
+		copied.File, copied.Line = "", 0
+		plain[i] = &copied
+	}
+	return plain
 }
 
 // faultWords tells a fault of a plan or scan. What is most often wrong while a plan is
 // changed is told in the language; the rest is English.
 func faultWords(w *words.Words, f *facets.Fault) string {
 	short := *f
-	short.File = filepath.Base(f.File)
+	if f.File != "" {
+		short.File = filepath.Base(f.File)
+	}
 	short.Why, short.Remedy = w.Like(commonFaults(), f.Why), w.Like(commonFaults(), f.Remedy)
 	text := short.Error()
 	if f.Tier != "" {
-		before, after, _ := strings.Cut(text, ": tier \"")
-		text = before + ": " + w.Say("tier \"%s", after)
+		before, after, _ := strings.Cut(text, "tier \"")
+		text = before + w.Say("tier \"%s", after)
 	}
 	return text
 }

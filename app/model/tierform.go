@@ -88,6 +88,9 @@ func (f TierForm) fill(t *facets.Tier) error {
 		if err != nil {
 			return words.Errorf("index: %v", err)
 		}
+		if tooth < 0 {
+			return words.Errorf("index: teeth are counted from 0, so there is none of %g", tooth)
+		}
 		t.Index = append(t.Index, tooth)
 	}
 	t.Fold = 0
@@ -116,24 +119,12 @@ func (f TierForm) fillStop(s *facets.Stop) error {
 			return words.Errorf("cut until: name the tier that the edge is made with")
 		}
 	}
-	v, err := parseSigned(f.Stop)
+	v, err := ParseNumber(f.Stop, "")
 	if err != nil {
 		return words.Errorf("cut until: %v", err)
 	}
 	s.Value = v
 	return nil
-}
-
-// parseSigned reads a number that may be negative: heights below z = 0.
-func parseSigned(text string) (float64, error) {
-	text = strings.TrimSpace(text)
-	for _, minus := range []string{"-", "−"} {
-		if rest, negative := strings.CutPrefix(text, minus); negative {
-			v, err := ParseNumber(rest, "")
-			return -v, err
-		}
-	}
-	return ParseNumber(text, "")
 }
 
 // parseCorners reads corners: marks apart by spaces, corners by semicolons.

@@ -33,6 +33,11 @@ func (w *window) open(path string) {
 			w.files.keepRecent(w.bench.Doc.Path)
 		}
 		w.afterOpening()
+		if w.bench.Doc.Path == "" {
+			if m, err := w.bench.MaterialOf(w.bench.Doc.Plan().Material); err == nil {
+				w.report("A scan, taken as %s and in millimetres: choose material and width above.", model.MaterialName(w.words, m))
+			}
+		}
 	})
 }
 
