@@ -18,6 +18,7 @@ import (
 	"pavilight/app/drawing"
 	"pavilight/app/sheet"
 	"pavilight/app/version"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 )
@@ -27,6 +28,7 @@ type cutCommand struct {
 	subjectFlags
 	More     []string `arg:"" optional:"" name:"more" help:"Further plans, to be bound with the first into one booklet."`
 	Machine  string   `type:"word" placeholder:"NAME" help:"The machine that the numbers are for: its name in the folder of machines, or its file (.toml)."`
+	Language string   `default:"en" type:"word" placeholder:"NAME" help:"The sheet's language: en, de, fr (${default})."`
 	Paper    string   `default:"a4" type:"word" placeholder:"NAME" help:"The paper: a4, letter or a5 (${default})."`
 	Large    bool     `help:"Set type a quarter larger."`
 	Order    string   `default:"lap" type:"word" placeholder:"NAME" help:"The order of a tier's indices: lap, as they follow on the gear, or opposites, each facet before the one that faces it (${default})."`
@@ -77,7 +79,7 @@ func (k *cutCommand) Run(c call) error {
 	if err != nil {
 		return err
 	}
-	kinds, err := words("--as", k.As, "pdf", "svg", "png")
+	kinds, err := wordsOf("--as", k.As, "pdf", "svg", "png")
 	if err != nil {
 		return err
 	}
@@ -149,11 +151,15 @@ func (k *cutCommand) Run(c call) error {
 // job reads the flags that are the same for every plan.
 func (k *cutCommand) job() (sheet.Job, error) {
 	job := sheet.Job{Machine: sheet.Plain(), HeadDeg: k.Head, Large: k.Large, Program: version.Current().Name()}
+	if !slices.Contains(words.Languages(), k.Language) {
+		return job, commandFaultf("--language %q is not known; use one of %s", k.Language, strings.Join(words.Languages(), ", "))
+	}
+	job.Words = words.In(k.Language)
 	var err error
 	if job.Paper, err = sheet.PaperNamed(k.Paper); err != nil {
 		return job, commandFaultf("--paper: %w", err)
 	}
-	order, err := words("--order", k.Order, "lap", "opposites")
+	order, err := wordsOf("--order", k.Order, "lap", "opposites")
 	if err != nil {
 		return job, err
 	}
@@ -178,7 +184,7 @@ func (k *cutCommand) job() (sheet.Job, error) {
 		}
 	}
 	if k.LeaveOut != "" {
-		parts, err := words("--leave-out", k.LeaveOut, "angles", "indices", "stops")
+		parts, err := wordsOf("--leave-out", k.LeaveOut, "angles", "indices", "stops")
 		if err != nil {
 			return job, err
 		}
@@ -192,8 +198,8 @@ func (k *cutCommand) job() (sheet.Job, error) {
 	return job, err
 }
 
-// words reads a list of words with commas between, each one of the known ones.
-func words(flag, list string, known ...string) ([]string, error) {
+// wordsOf reads a list of words with commas between, each one of the known ones.
+func wordsOf(flag, list string, known ...string) ([]string, error) {
 	var all []string
 	for word := range strings.SplitSeq(list, ",") {
 		word = strings.TrimSpace(word)
@@ -292,7 +298,7 @@ func (f *subjectFlags) planOfStone(c call) (*facets.Plan, *gems.Material, error)
 	plan := facets.PlanOf(s.stone, usualGear)
 	plan.Name, plan.Material.Key = s.name, s.material.Key
 	plan.File = strings.ReplaceAll(s.name, " ", "-") + ".toml"
-	plan.Notes = "Made from the shape alone. What the facets were cut to meet is not known: every tier stops by distance."
+	plan.Notes = sheet.ShapeAlone.English()
 	return plan, s.material, nil
 }
 
@@ -346,16 +352,17 @@ func (k *cutCommand) documents(sheets []*sheet.Sheet, kinds []string) (files []m
 		return files, pages, err
 	}
 	for _, copies := range []struct {
-		suffix, words string
-		leaveOut      sheet.LeaveOut
+		suffix   string
+		copy     words.Key
+		leaveOut sheet.LeaveOut
 	}{
-		{"-pupil", "pupil's copy", sheets[0].LeaveOut},
-		{"-teacher", "teacher's copy", sheet.LeaveOut{}},
+		{"-pupil", sheet.PupilsCopy, sheets[0].LeaveOut},
+		{"-teacher", sheet.TeachersCopy, sheet.LeaveOut{}},
 	} {
 		var changed []*sheet.Sheet
 		for _, s := range sheets {
 			one := *s
-			one.LeaveOut, one.Copy = copies.leaveOut, copies.words
+			one.LeaveOut, one.Copy = copies.leaveOut, copies.copy
 			changed = append(changed, &one)
 		}
 		if err := add(base+copies.suffix, changed); err != nil {
@@ -367,7 +374,7 @@ func (k *cutCommand) documents(sheets []*sheet.Sheet, kinds []string) (files []m
 
 func (k *cutCommand) document(sheets []*sheet.Sheet) (*drawing.Document, error) {
 	if len(sheets) > 1 {
-		return sheet.Booklet(k.Title, sheets)
+		return sheet.Booklet(sheets[0].Words.Among([]words.Key{sheet.BookletTitle}, k.Title), sheets)
 	}
 	return sheets[0].Document()
 }
@@ -412,7 +419,7 @@ func newCutSheet(s *sheet.Sheet) cutSheet {
 		r := &s.Rows[i]
 		step := cutStep{
 			Tier: r.Tier.Name, ToLap: r.Facing.String(), AngleDeg: r.Solved.Angle.Degrees(), SetDeg: r.Reading.Degrees(),
-			Stop: r.Stop, RemovedMM3: r.Step.Removed, LayerMM: r.Step.Depth,
+			Stop: s.StopIn(nil, r), RemovedMM3: r.Step.Removed, LayerMM: r.Step.Depth,
 		}
 		for _, set := range r.Settings {
 			step.Set = append(step.Set, set.String())

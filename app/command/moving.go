@@ -39,7 +39,7 @@ func (m *movingFlags) mover(job *report.Job) (*mover, error) {
 	if m.Moving == "" {
 		return nil, nil
 	}
-	kinds, err := words("--moving", m.Moving, "gif", "apng", "png", "mp4", "webm")
+	kinds, err := wordsOf("--moving", m.Moving, "gif", "apng", "png", "mp4", "webm")
 	if err != nil {
 		return nil, err
 	}

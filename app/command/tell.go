@@ -201,7 +201,7 @@ func (t *tellCommand) ready(library *gems.Library) (*teller, error) {
 		r.folder = "."
 	}
 	var err error
-	if r.kinds, err = words("--as", t.As, "pdf", "html", "json", "csv", "pfm", "none"); err != nil {
+	if r.kinds, err = wordsOf("--as", t.As, "pdf", "html", "json", "csv", "pfm", "none"); err != nil {
 		return nil, err
 	}
 	r.job = report.Job{Head: facets.Angle(t.Head) * facets.Degree, Pixels: t.Pixels, Error: t.Error, Seed: t.Seed, Workers: t.Workers}
@@ -245,7 +245,7 @@ func (r *teller) readCover() error {
 	if !slices.Contains(report.Languages(), t.Language) {
 		return commandFaultf("--language %q is not known; use one of %s", t.Language, strings.Join(report.Languages(), ", "))
 	}
-	depth, err := words("--depth", t.Depth, "client", "colleague")
+	depth, err := wordsOf("--depth", t.Depth, "client", "colleague")
 	if err != nil {
 		return err
 	}

@@ -242,6 +242,15 @@ func TestWrapAndCut(t *testing.T) {
 			t.Errorf("Cut(%.20q) is %.1f mm wide", words, body.Width(c))
 		}
 	}
+	french := "coupe à 30° : « un » ; reste 10 : 1 !"
+	for width := 15.0; width < 60; width += 0.5 {
+		for _, l := range body.Wrap(french, width) {
+			if strings.HasPrefix(l, ": «") || strings.HasPrefix(l, ";") || strings.HasPrefix(l, "»") || strings.HasPrefix(l, "!") ||
+				strings.HasSuffix(l, "«") {
+				t.Errorf("at %g mm a line reads %q", width, l)
+			}
+		}
+	}
 	if got := body.Wrap("p\nq", 30); len(got) != 2 {
 		t.Errorf("a line end is lost: %q", got)
 	}

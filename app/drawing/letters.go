@@ -113,6 +113,27 @@ func Clean(words string) (clean string, missing bool) {
 	return strings.TrimSpace(out.String()), missing
 }
 
+// units returns the words of a text, each with the signs that French sets a space before,
+// or after, and that must not begin, or end, a line as long as both fit on one. The colon
+// of a ratio, 10 : 1, is none.
+func (t Type) units(text string, width float64) []string {
+	var all []string
+	opened := false
+	words := strings.Fields(text)
+	for i, word := range words {
+		closes := word == ";" || word == "!" || word == "?" || strings.HasPrefix(word, "»") ||
+			word == ":" && (i+1 == len(words) || !unicode.IsDigit(rune(words[i+1][0])))
+		last := len(all) - 1
+		if (closes || opened) && last >= 0 && t.Width(all[last]+" "+word) <= width {
+			all[last] += " " + word
+		} else {
+			all = append(all, word)
+		}
+		opened = strings.HasSuffix(word, "«")
+	}
+	return all
+}
+
 // Wrap breaks a text between words into lines of at most width mm. A word that is
 // wider is broken. Line ends of the text are kept; there is at least one line.
 func (t Type) Wrap(words string, width float64) []string {
@@ -120,7 +141,7 @@ func (t Type) Wrap(words string, width float64) []string {
 	for paragraph := range strings.SplitSeq(strings.TrimSpace(words), "\n") {
 		clean, _ := Clean(paragraph)
 		line := ""
-		for word := range strings.FieldsSeq(clean) {
+		for _, word := range t.units(clean, width) {
 			longer := strings.TrimLeft(line+" "+word, " ")
 			if t.Width(longer) <= width {
 				line = longer

@@ -2,6 +2,7 @@ package drawing
 
 import (
 	"bytes"
+	"cmp"
 	"fmt"
 	"image"
 	"image/draw"
@@ -16,6 +17,7 @@ import (
 // Document is pages to be put out together, with what a PDF says about itself.
 type Document struct {
 	Title, Author, Subject string
+	Language               string    // of its texts, as BCP 47 has it; empty for English
 	Creator                string    // the program and its version
 	Date                   time.Time // of the document; the zero Date stands for 1 January 2000, UTC
 	Pages                  []*Page
@@ -44,7 +46,7 @@ func (d *Document) PDF(w io.Writer) error {
 	f.SetCreationDate(date)
 	f.SetModificationDate(date)
 	f.SetCatalogSort(true)
-	f.SetLang("en")
+	f.SetLang(cmp.Or(d.Language, "en"))
 	f.SetTitle(plane0(d.Title), true)
 	f.SetAuthor(plane0(d.Author), true)
 	f.SetSubject(plane0(d.Subject), true)

@@ -19,6 +19,7 @@ import (
 
 // CutWish says how the sheet shall look.
 type CutWish struct {
+	Language  string // of the sheet, as words.Languages names it
 	Paper     string // as sheet.Papers names it
 	Machine   string // name of one of the user's machines; empty for the plain one
 	Opposites bool   // indices with the opposite ones first
@@ -74,7 +75,7 @@ func (s cutSubject) same(o cutSubject) bool {
 // NewCut returns the state before a sheet was asked for. do hands work to the window's
 // goroutine, in order, without waiting for it; onChange is called there.
 func NewCut(machines sheet.Machines, do func(func()), onChange func()) *Cut {
-	c := &Cut{Wish: CutWish{Paper: sheet.Papers()[0].Name, Maps: true}, Machines: machines, do: do, onChange: onChange}
+	c := &Cut{Wish: CutWish{Language: "en", Paper: sheet.Papers()[0].Name, Maps: true}, Machines: machines, do: do, onChange: onChange}
 	c.painter, c.repaints = painter{do: do, open: &c.open}, onChange
 	return c
 }
@@ -178,9 +179,9 @@ func (r *cutRun) work(ctx context.Context) error {
 	s := r.subject
 	job := sheet.Job{Plan: s.plan, Material: s.material, Machine: sheet.Plain(), HeadDeg: s.head.Degrees(),
 		Large: r.wish.Large, Opposites: r.wish.Opposites, Gears: r.wish.Gears, LeaveOut: r.wish.LeaveOut,
-		Program: s.program, Workers: max(1, runtime.GOMAXPROCS(0)-1)}
+		Words: words.In(r.wish.Language), Program: s.program, Workers: max(1, runtime.GOMAXPROCS(0)-1)}
 	if r.wish.LeaveOut.Any() {
-		job.Copy = pupilsCopy
+		job.Copy = sheet.PupilsCopy
 	}
 	var err error
 	if job.Paper, err = sheet.PaperNamed(r.wish.Paper); err != nil {
@@ -263,12 +264,6 @@ func (c *Cut) FileName() string {
 	return c.Sheet.FileName() + ".pdf"
 }
 
-// The copies that are made where parts are left out.
-const (
-	pupilsCopy   = "pupil's copy"
-	teachersCopy = "teacher's copy"
-)
-
 // AnswersName returns the path of the teacher's copy that goes with a pupil's, and false
 // where nothing is left out.
 func (c *Cut) AnswersName(path string) (string, bool) {
@@ -292,7 +287,7 @@ func (c *Cut) Write(path string, done func(files []string, err error)) {
 			files = append(files, path)
 			if answers {
 				full := *made
-				full.LeaveOut, full.Copy = sheet.LeaveOut{}, teachersCopy
+				full.LeaveOut, full.Copy = sheet.LeaveOut{}, sheet.TeachersCopy
 				if err = writeSheet(&full, teacher); err == nil {
 					files = append(files, teacher)
 				}

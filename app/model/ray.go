@@ -7,6 +7,7 @@ import (
 
 	"github.com/go-gl/mathgl/mgl64"
 
+	"pavilight/app/stock"
 	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/trace"
@@ -109,7 +110,7 @@ func (l *Look) followed(r Ray) Ray {
 
 // Title says what is followed, in which surrounding, against which critical angle.
 func (r *Ray) Title(w *words.Words) string {
-	medium := w.Within(shortName(w, r.Around.Medium))
+	medium := w.Within(stock.ShortOf(w, r.Around.Medium))
 	if r.Around.Dish {
 		medium = w.Say("a dish of %s", medium)
 	}

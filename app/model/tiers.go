@@ -5,6 +5,7 @@ import (
 	"strings"
 	"unicode"
 
+	"pavilight/app/stock"
 	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
@@ -168,7 +169,7 @@ func criticalTicks(w *words.Words, material *gems.Material, around []Around) []T
 			continue
 		}
 		if angle, ok := trace.CriticalAngle(n, outside); ok {
-			ticks = append(ticks, Tick{Letter: letterOf(w, m), Name: MaterialName(w, m), Angle: angle})
+			ticks = append(ticks, Tick{Letter: letterOf(w, m), Name: stock.NameOf(w, m), Angle: angle})
 		}
 	}
 	return ticks
@@ -176,7 +177,7 @@ func criticalTicks(w *words.Words, material *gems.Material, around []Around) []T
 
 // letterOf returns the letter by which a surrounding's tick is known.
 func letterOf(w *words.Words, m *gems.Material) string {
-	for _, r := range shortName(w, m) {
+	for _, r := range stock.ShortOf(w, m) {
 		return string(unicode.ToLower(r))
 	}
 	return "?"

@@ -6,6 +6,7 @@ import (
 	"strconv"
 	"strings"
 
+	"pavilight/app/stock"
 	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/trace/tune"
@@ -291,7 +292,7 @@ func (t *Tune) toleranceWords() []string {
 
 func (t *Tune) movedWords() (lines []string) {
 	m := t.Moved
-	from, to := MaterialName(t.words, m.From), MaterialName(t.words, m.To)
+	from, to := stock.NameOf(t.words, m.From), stock.NameOf(t.words, m.To)
 	say := t.words.Say
 	for i, a := range []struct {
 		how   string
@@ -320,7 +321,7 @@ func (t *Tune) movedWords() (lines []string) {
 
 // underWords says that a tier lies under a critical angle.
 func (t *Tune) underWords(u tune.Under) string {
-	medium := t.words.Within(shortName(t.words, u.Medium))
+	medium := t.words.Within(stock.ShortOf(t.words, u.Medium))
 	if u.Critical >= 90*facets.Degree {
 		return t.words.Say("pavilion %s: in %s nothing is totally reflected", u.Tier, medium)
 	}

@@ -3,8 +3,10 @@ package model
 import (
 	"math"
 
+	"pavilight/app/stock"
 	"pavilight/app/words"
 	"pavilight/facets"
+	"pavilight/gems"
 	"pavilight/trace"
 )
 
@@ -47,6 +49,9 @@ func Quantities() []trace.Quantity {
 	return []trace.Quantity{trace.Returned, trace.Leaked, trace.Head, trace.Surface, trace.Absorbed}
 }
 
+// NameOf names a surrounding in short, as it stands within a sentence.
+func (l *Look) NameOf(m *gems.Material) string { return l.words.Within(stock.ShortOf(l.words, m)) }
+
 // Heading is what stands above a column of maps.
 type Heading struct {
 	Medium   string // its name
@@ -57,7 +62,7 @@ type Heading struct {
 // Heading returns what stands above a column.
 func (l *Look) Heading(column int) Heading {
 	a := l.Around[column]
-	h := Heading{Medium: shortName(l.words, a.Medium)}
+	h := Heading{Medium: stock.ShortOf(l.words, a.Medium)}
 	if a.Dish {
 		h.Medium = l.words.Say("Dish of %s", l.words.Within(h.Medium))
 	}

@@ -4,9 +4,14 @@ import (
 	"fmt"
 
 	"pavilight/app/drawing"
+	"pavilight/app/stock"
+	"pavilight/app/words"
 )
 
-// Booklet binds several sheets, which share paper and size of type, into one document
+// BookletTitle is the title of a booklet that nobody named.
+const BookletTitle words.Key = "Cutting sheets"
+
+// Booklet binds several sheets, which share paper, size of type and language, into one document
 // with a page of contents in front.
 func Booklet(title string, sheets []*Sheet) (*drawing.Document, error) {
 	if len(sheets) == 0 {
@@ -47,7 +52,8 @@ func (l *press) contents(title string, sheets []*Sheet, bound [][]*drawing.Page,
 	plain.LightModel = false // the banner belongs to its own sheet
 	l.sheet = &plain
 	defer func() { l.sheet = model }()
-	l.start("", "Contents")
+	in := l.sheet.Words
+	l.start("", in.Say("Contents"))
 	l.y += l.lines(l.title(), black(), l.left(), l.y, l.width(), title) + 1
 	l.rule(l.y)
 	l.y += 3
@@ -63,9 +69,9 @@ func (l *press) contents(title string, sheets []*Sheet, bound [][]*drawing.Page,
 			l.say(l.tier(), black(), l.left(), l.y+0.78*l.tier().Leading(), line)
 			l.y += l.tier().Leading()
 		}
-		words := fmt.Sprintf("%s, %s, gear of %d, %d steps", s.Material.Name,
+		what := in.Say("%s, %s, gear of %d, %d steps", stock.NameOf(in, s.Material),
 			sizes(s.Measures.LengthMM, s.Measures.WidthMM, s.Measures.DepthMM), s.Machine.Gear, len(s.Rows))
-		l.y += l.lines(l.body(), pale(), l.left(), l.y, l.width()-15*l.k, words) + 2
+		l.y += l.lines(l.body(), pale(), l.left(), l.y, l.width()-15*l.k, what) + 2
 		number += len(bound[i])
 	}
 }

@@ -1,24 +1,21 @@
 package sheet
 
-import (
-	"fmt"
-
-	"pavilight/facets"
-)
+import "pavilight/facets"
 
 // film sets the stone after every step as small pictures, with what each step takes
 // off and what a mistake in it costs.
 func (l *press) film() {
 	s := l.sheet
-	l.begin("Step by step – "+s.Plan.Name, "Step by step", 0.6*s.Paper.Height)
-	from := fmt.Sprintf("from a box %.0f %% larger than the stone", 100*facets.BlockMargin)
+	in := s.Words
+	l.begin(in.Say("Step by step – %s", s.Plan.Name), in.Say("Step by step"), 0.6*s.Paper.Height)
+	from := in.Say("from a box %.0f %% larger than the stone", 100*facets.BlockMargin)
 	if s.Rough.Stone != nil {
-		from = "from the plan's rough, " + s.Rough.Words.String()
+		from = in.Say("from the plan's rough, %s", s.Rough.Words)
 	}
-	l.paragraph(l.body(), pale(), fmt.Sprintf("The stone after each step, %s, seen from the lap. "+
+	l.paragraph(l.body(), pale(), in.Say("The stone after each step, %s, seen from the lap. "+
 		"Grey: what is left of the rough. Dark: what the step cut. Off: what it takes off, of the rough; layer: the thickest part of it.", from))
 	if !s.LeaveOut.Angles {
-		l.paragraph(l.body(), pale(), fmt.Sprintf("Cost: what %.2f mm too deep takes of width or height, "+
+		l.paragraph(l.body(), pale(), in.Say("Cost: what %.2f mm too deep takes of width or height, "+
 			"and of the weight if the rough has nothing to spare and all the rest is cut smaller to match.", TooDeep))
 	}
 	l.y += 2
@@ -28,7 +25,11 @@ func (l *press) film() {
 	t := l.body()
 	picture := 0.8 * cell
 	total := s.blockVolume()
-	height := picture + l.tier().Leading() + 4*t.Leading() + 3
+	under := 4 * t.Leading()
+	for i := range s.Rows {
+		under = max(under, tall(t, cell, l.frameWords(&s.Rows[i], total)))
+	}
+	height := picture + l.tier().Leading() + under + 3
 	for i := range s.Rows {
 		r := &s.Rows[i]
 		column := i % across
@@ -60,18 +61,26 @@ func (l *press) frame(r *Row, x, cell, picture, total float64) {
 	v := fit(r.Step.Stone, right, up, pt(x+cell/2, l.y+picture/2), cell-2, picture-2, 1e9)
 	v.solid(l.page, r.Step.Stone, r.Step.New, 0.8)
 	y := l.y + picture + 0.5
-	head := fmt.Sprintf("%d  %s", r.Number, r.Tier.Name)
+	in := l.sheet.Words
+	head := in.Say("%d  %s", r.Number, r.Tier.Name)
 	if r.Turn {
-		head += "  (turned)"
+		head = in.Say("%s  (turned)", head)
 	}
 	l.say(l.tier(), black(), x, y+0.78*l.tier().Leading(), l.tier().Cut(head, cell))
 	y += l.tier().Leading()
-	words := fmt.Sprintf("off %.1f mm³, %.1f %%\nlayer %.2f mm", r.Step.Removed, 100*r.Step.Removed/total, r.Step.Depth)
+	l.lines(t, black(), x, y, cell, l.frameWords(r, total))
+}
+
+// frameWords tells under a picture of the film what the step takes off, of the given
+// volume, and what a mistake in it costs.
+func (l *press) frameWords(r *Row, total float64) string {
+	in := l.sheet.Words
+	told := in.Say("off %.1f mm³, %.1f %%\nlayer %.2f mm", r.Step.Removed, 100*r.Step.Removed/total, r.Step.Depth)
 	if len(r.Step.New) == 0 {
-		words = "takes nothing off this rough"
+		told = in.Say("takes nothing off this rough")
 	}
 	if !l.sheet.LeaveOut.Angles && !r.Tier.Temporary {
-		words += fmt.Sprintf("\ncost %.2f mm, %.1f %%", r.TooDeepMM, r.TooDeepPct)
+		told = joined("\n", told, in.Say("cost %.2f mm, %.1f %%", r.TooDeepMM, r.TooDeepPct))
 	}
-	l.lines(t, black(), x, y, cell, words)
+	return told
 }

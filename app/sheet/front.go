@@ -1,7 +1,6 @@
 package sheet
 
 import (
-	"fmt"
 	"image"
 	"image/color"
 	"math"
@@ -12,6 +11,8 @@ import (
 
 	"pavilight/app/drawing"
 	"pavilight/app/picture"
+	"pavilight/app/stock"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/trace"
 )
@@ -31,7 +32,7 @@ func (l *press) front() {
 		l.page.Write(t, black(), drawing.Left, pt(l.left(), l.y+0.8*t.Leading()), line)
 		l.y += t.Leading()
 	}
-	sub := joined(", ", s.Copy, by(s.Plan.Author))
+	sub := joined(", ", s.Words.Say(s.Copy), s.by())
 	if sub != "" {
 		l.y += l.lines(l.body(), pale(), l.left(), l.y, l.width(), sub)
 	}
@@ -54,11 +55,12 @@ func (l *press) front() {
 	}
 }
 
-func by(author string) string {
-	if author == "" {
+// by says whose plan it is, where that is known.
+func (s *Sheet) by() string {
+	if s.Plan.Author == "" {
 		return ""
 	}
-	return "plan by " + author
+	return s.Words.Say("plan by %s", s.Plan.Author)
 }
 
 // fact is a name and what there is to say.
@@ -66,107 +68,108 @@ type fact struct{ name, value string }
 
 func (l *press) factList() []fact {
 	s := l.sheet
-	m := &s.Measures
-	list := []fact{{"Material", s.materialWords()}}
-	size := sizes(m.LengthMM, m.WidthMM, m.DepthMM)
+	in, m := s.Words, &s.Measures
+	list := []fact{{in.Say("Material"), s.materialWords()}}
+	size := in.Text(sizes(m.LengthMM, m.WidthMM, m.DepthMM))
 	if m.Round {
-		size = fmt.Sprintf("%.2f mm across, %.2f mm high", m.WidthMM, m.DepthMM)
+		size = in.Say("%.2f mm across, %.2f mm high", m.WidthMM, m.DepthMM)
 	}
-	list = append(list, fact{"Finished", size})
+	list = append(list, fact{in.Say("Finished"), size})
+	weight := in.Say("%.1f mm³; the material's density is not known", m.VolumeMM3)
 	if c, ok := s.Carats(m.VolumeMM3); ok {
-		list = append(list, fact{"Weight",
-			fmt.Sprintf("%.2f ct (%.1f mm³ at %.2f g/cm³)", c, m.VolumeMM3, s.Material.Density)})
-	} else {
-		list = append(list, fact{"Weight", fmt.Sprintf("%.1f mm³; the material's density is not known", m.VolumeMM3)})
+		weight = in.Say("%.2f ct (%.1f mm³ at %.2f g/cm³)", c, m.VolumeMM3, s.Material.Density)
 	}
+	list = append(list, fact{in.Say("Weight"), weight})
 	if !s.LightModel {
-		list = append(list, fact{"Rough", s.roughWords()})
+		list = append(list, fact{in.Say("Rough"), s.roughWords()})
 	}
-	girdle := fmt.Sprintf("%.1f", m.GirdlePercent.Min)
-	if most := fmt.Sprintf("%.1f", m.GirdlePercent.Max); most != girdle {
-		girdle += " to " + most
+	girdle := in.Say("%.1f", m.GirdlePercent.Min)
+	if most := in.Say("%.1f", m.GirdlePercent.Max); most != girdle {
+		girdle = in.Say("%s to %s", girdle, most)
 	}
-	shape := fmt.Sprintf("%d facets; table %.1f %%, crown %.1f %%, pavilion %.1f %%, girdle %s %% of the width",
+	shape := in.Say("%d facets; table %.1f %%, crown %.1f %%, pavilion %.1f %%, girdle %s %% of the width",
 		len(s.Solution.Stone.Facets), m.TablePercent, m.CrownHeightPercent, m.PavilionDepthPercent, girdle)
-	list = append(list, fact{"Shape", shape})
+	list = append(list, fact{in.Say("Shape"), shape})
 	if !s.LightModel {
-		list = append(list, fact{"Machine", s.machineWords()})
+		list = append(list, fact{in.Say("Machine"), s.machineWords()})
 	}
 	if s.Plan.Notes != "" && !s.LeaveOut.Any() {
-		notes := strings.Join(strings.Fields(s.Plan.Notes), " ")
+		notes := in.Among([]words.Key{ShapeAlone}, strings.Join(strings.Fields(s.Plan.Notes), " "))
 		if key := s.Plan.Material.Key; key != "" && key != s.Material.Key {
-			notes = "(Written for " + key + ", not for this material.) " + notes
+			notes = in.Say("(Written for %s, not for this material.) %s", stock.KeyOf(in, key), notes)
 		}
-		list = append(list, fact{"Notes", notes})
+		list = append(list, fact{in.Say("Notes"), notes})
 	}
 	return list
 }
 
 func (s *Sheet) materialWords() string {
-	m := s.Material
-	words := m.Name
+	in, m := s.Words, s.Material
+	told := []string{stock.NameOf(in, m)}
 	if n, err := m.Indices(589.3); err == nil {
 		if b := n.Birefringence(); b > 0.0005 {
-			words += fmt.Sprintf(", refractive index %.3f to %.3f", n.Least(), n.Greatest())
+			told = append(told, in.Say("refractive index %.3f to %.3f", n.Least(), n.Greatest()))
 		} else {
-			words += fmt.Sprintf(", refractive index %.3f", n.Mean())
+			told = append(told, in.Say("refractive index %.3f", n.Mean()))
 		}
 	}
 	if h := m.Hardness; h.Hi > 0 {
 		if h.Lo == h.Hi {
-			words += fmt.Sprintf(", hardness %g", h.Lo)
+			told = append(told, in.Say("hardness %g", h.Lo))
 		} else {
-			words += fmt.Sprintf(", hardness %g to %g", h.Lo, h.Hi)
+			told = append(told, in.Say("hardness %g to %g", h.Lo, h.Hi))
 		}
 	}
+	split := ""
 	if m.Cleavage != "" {
-		words += "; cleavage: " + m.Cleavage
+		split = in.Say("cleavage: %s", stock.CleavageOf(in, m))
 	}
-	return words
+	return joined("; ", strings.Join(told, ", "), split)
 }
 
 func (s *Sheet) roughWords() string {
+	in := s.Words
 	_, extent := middleOf(s.Solution.Stone)
 	a := 2 * s.Rough.AllowanceMM
 	box := extent.Add(mgl64.Vec3{a, a, a})
-	volume, words := s.Rough.VolumeMM3, s.Rough.Words.String()
+	least := sizes(box[0], box[1], box[2])
+	volume, told := s.Rough.VolumeMM3, in.Text(s.Rough.Words)
 	if volume == 0 {
 		volume = box[0] * box[1] * box[2]
-		smallest := fmt.Sprintf("smallest box with %.2f mm all round %s", s.Rough.AllowanceMM, sizes(box[0], box[1], box[2]))
-		words = joined("; ", words, smallest)
+		told = joined("; ", told, in.Say("smallest box with %.2f mm all round %s", s.Rough.AllowanceMM, least))
 	}
 	if c, ok := s.Carats(volume); ok {
-		words += fmt.Sprintf(", %.2f ct", c)
+		told = joined(", ", told, in.Say("%.2f ct", c))
 	}
-	words += fmt.Sprintf("; yield %.0f %%", 100*s.Measures.VolumeMM3/volume)
+	told = joined("; ", told, in.Say("yield %.0f %%", 100*s.Measures.VolumeMM3/volume))
 	if s.Rough.TooSmall {
-		words += fmt.Sprintf(". It does not hold the stone along its axes, which needs %s", sizes(box[0], box[1], box[2]))
+		told = in.Say("%s. It does not hold the stone along its axes, which needs %s", told, least)
 	}
-	return words
+	return told
 }
 
 func (s *Sheet) machineWords() string {
-	m := &s.Machine
-	words := fmt.Sprintf("%s; gear of %d teeth, %s° a tooth", m.Name, m.Gear, trimmed(360/float64(m.Gear), 4))
+	in, m := s.Words, &s.Machine
+	gear := in.Say("gear of %d teeth, %s° a tooth", m.Gear, trimmed(in, 360/float64(m.Gear), 4))
 	if m.Gear != s.Plan.Gear {
-		words += fmt.Sprintf(" (the plan is written for %d)", s.Plan.Gear)
+		gear = in.Say("%s (the plan is written for %d)", gear, s.Plan.Gear)
 	}
-	words += fmt.Sprintf("; angles to %s°", trimmed(m.AngleStep.Degrees(), 3))
+	told := []string{in.Among([]words.Key{plainName}, m.Name), gear, in.Say("angles to %s°", trimmed(in, m.AngleStep.Degrees(), 3))}
 	if m.PavilionOffset != 0 || m.CrownOffset != 0 {
-		words += fmt.Sprintf("; %s° added on the pavilion, %s° on the crown",
-			signed(m.PavilionOffset.Degrees(), 2), signed(m.CrownOffset.Degrees(), 2))
+		told = append(told, in.Say("%s° added on the pavilion, %s° on the crown",
+			signed(in, m.PavilionOffset.Degrees(), 2), signed(in, m.CrownOffset.Degrees(), 2)))
 	}
 	if m.Cheater > 0 {
-		words += fmt.Sprintf("; cheater ±%s°", trimmed(m.Cheater.Degrees(), 2))
+		told = append(told, in.Say("cheater ±%s°", trimmed(in, m.Cheater.Degrees(), 2)))
 	}
 	if m.TableAdapter > 0 {
-		words += fmt.Sprintf("; table adapter %s°", trimmed(m.TableAdapter.Degrees(), 2))
+		told = append(told, in.Say("table adapter %s°", trimmed(in, m.TableAdapter.Degrees(), 2)))
 	}
-	run := "same"
+	run := words.Key("crown numbers same, transfer at %s")
 	if m.CrownReversed {
-		run = "reversed"
+		run = "crown numbers reversed, transfer at %s"
 	}
-	return words + fmt.Sprintf("; crown numbers %s, transfer at %s", run, s.transferSetting())
+	return strings.Join(append(told, in.Say(run, s.transferSetting().In(in))), "; ")
 }
 
 // mostFactLines is how long a fact may be on the front page.
@@ -180,11 +183,10 @@ func (l *press) facts() {
 	}
 	x := l.left() + name + 3
 	for _, f := range list {
-		words := f.value
-		words = l.short("the plan", words, l.right()-x, mostFactLines)
-		l.need(tall(l.body(), l.right()-x, words))
+		told := l.short(l.sheet.Words.Say("Notes on the plan"), f.value, l.right()-x, mostFactLines)
+		l.need(tall(l.body(), l.right()-x, told))
 		l.say(l.strong(), black(), l.left(), l.y+0.78*l.body().Leading(), f.name)
-		l.y += l.lines(l.body(), black(), x, l.y, l.right()-x, words) + 0.7
+		l.y += l.lines(l.body(), black(), x, l.y, l.right()-x, told) + 0.7
 	}
 	l.y += 1
 }
@@ -192,20 +194,23 @@ func (l *press) facts() {
 // threeViews draws the finished stone from above, from below and from the side at one
 // scale, with its sizes.
 func (l *press) threeViews() {
-	stone := l.sheet.Solution.Stone
+	in, stone := l.sheet.Words, l.sheet.Solution.Stone
 	_, extent := middleOf(stone)
 	t := l.body()
 	gap := 6.0
-	heights := t.Width("pavilion 00.00") + 7
-	const side = "from the side"
+	heights := 0.0
+	for _, k := range []words.Key{"crown %.2f", "girdle %.2f", "pavilion %.2f"} {
+		heights = max(heights, t.Width(in.Say(k, 10.0))+7)
+	}
 	height := min(0.2*l.sheet.Paper.Height, 52)
 	scale := roundScale(min(height/extent[0], height/extent[2], (l.width()-heights-2*gap)/(3*extent[1])))
-	above := fmt.Sprintf("from above, drawn %s : 1", trimmed(scale, 2))
+	above := in.Say("from above, drawn %s : 1", trimmed(in, scale, 2))
+	below, side := in.Say("from below"), in.Say("from the side")
 	cell := func(words string) float64 { return max(scale*extent[1], t.Width(words)) }
 	tall := scale * max(extent[0], extent[2])
 	// On narrow paper the words may be wider than the views, and the views stand closer.
 	const least = 1.5
-	gap = max(least, min(gap, (l.width()-heights-cell(above)-cell("from below")-cell(side))/2))
+	gap = max(least, min(gap, (l.width()-heights-cell(above)-cell(below)-cell(side))/2))
 	l.need(tall + 3*t.Leading())
 	middle := l.y + tall/2 + 1
 	x := l.left()
@@ -213,7 +218,7 @@ func (l *press) threeViews() {
 		words string
 		axes  func() (mgl64.Vec3, mgl64.Vec3)
 	}{
-		{above, fromAbove}, {"from below", fromBelow},
+		{above, fromAbove}, {below, fromBelow},
 		{side, func() (mgl64.Vec3, mgl64.Vec3) { return fromSide(0) }},
 	} {
 		right, up := look.axes()
@@ -232,17 +237,16 @@ func (l *press) threeViews() {
 // heights writes the heights of crown, girdle and pavilion beside the view from the
 // side. A line leads from each to its place.
 func (l *press) heights(v *View, x float64) {
-	s := l.sheet
-	m := &s.Measures
+	in, m := l.sheet.Words, &l.sheet.Measures
 	g := m.GirdleHeightMM
 	type band struct {
 		words    string
 		from, to float64 // z, mm
 	}
 	bands := []band{
-		{fmt.Sprintf("crown %.2f", m.CrownHeightMM), g.Max, g.Max + m.CrownHeightMM},
-		{fmt.Sprintf("girdle %.2f", g.Max-g.Min), g.Min, g.Max},
-		{fmt.Sprintf("pavilion %.2f", m.PavilionDepthMM), g.Min - m.PavilionDepthMM, g.Min},
+		{in.Say("crown %.2f", m.CrownHeightMM), g.Max, g.Max + m.CrownHeightMM},
+		{in.Say("girdle %.2f", g.Max-g.Min), g.Min, g.Max},
+		{in.Say("pavilion %.2f", m.PavilionDepthMM), g.Min - m.PavilionDepthMM, g.Min},
 	}
 	bands = slices.DeleteFunc(bands, func(b band) bool { return b.to-b.from < 0.005 }) // nothing to see
 	t := l.body()
@@ -273,7 +277,17 @@ func (l *press) maps() {
 		return
 	}
 	t := l.body()
+	in := l.sheet.Words
+	quantities := []struct {
+		q    trace.Quantity
+		name string
+		map_ *picture.ColourMap
+	}{{trace.Returned, in.Say("return|of light"), picture.Cividis()}, {trace.Leaked, in.Say("leakage"), picture.Cubehelix()}}
 	columns := float64(len(light.Columns))
+	names := 14 * l.k // the column of names
+	for _, q := range quantities {
+		names = max(names, t.Width(q.name)+2)
+	}
 	beside := l.width() > (25+14*columns+70)*l.k
 	edge := min((l.width()-26*l.k)/(2*columns)-2, 27)
 	rows := 2 + int(trace.Unresolved) + 1
@@ -283,43 +297,38 @@ func (l *press) maps() {
 		edge = min((l.width()-26*l.k)/columns-2, 22)
 		height = 2*t.Leading() + 2*edge + 5 + table
 	}
-	l.subhead("Where the light goes, seen face-up", height)
+	l.subhead(in.Say("Where the light goes, seen face-up"), height)
 	top := l.y
-	quantities := []struct {
-		q     trace.Quantity
-		words string
-		map_  *picture.ColourMap
-	}{{trace.Returned, "return", picture.Cividis()}, {trace.Leaked, "leakage", picture.Cubehelix()}}
 	x := l.left()
 	for row, q := range quantities {
 		y := top + t.Leading() + float64(row)*(edge+1.5)
-		l.page.Write(t, pale(), drawing.Left, pt(x, y+edge/2), q.words)
+		l.page.Write(t, pale(), drawing.Left, pt(x, y+edge/2), q.name)
 		for i := range light.Columns {
 			c := &light.Columns[i]
-			at := pt(x+14*l.k+float64(i)*(edge+2), y)
+			at := pt(x+names+float64(i)*(edge+2), y)
 			l.page.Place(paletted(c.Map.Field(q.q), c.Map.Pixels, q.map_), at, edge, edge)
 			if row == 0 {
-				l.page.Write(t, pale(), drawing.Middle, pt(at.X+edge/2, top+0.78*t.Leading()), columnName(c))
+				l.page.Write(t, pale(), drawing.Middle, pt(at.X+edge/2, top+0.78*t.Leading()), columnName(in, c))
 			}
 		}
-		l.scale(q.map_, pt(x+14*l.k+columns*(edge+2), y), edge)
+		l.scale(q.map_, pt(x+names+columns*(edge+2), y), edge)
 	}
 	if beside {
-		l.ledger(x+14*l.k+columns*(edge+2)+11*l.k, top)
+		l.ledger(x+names+columns*(edge+2)+11*l.k, top)
 	} else {
 		l.ledger(x, top+t.Leading()+2*edge+4)
 	}
 	l.y = top + height
 }
 
-// columnName returns what a column is called: the medium's key.
-func columnName(c *trace.Column) string {
-	name := c.Medium.Key
+// columnName returns what a column is called: the medium by its key.
+func columnName(in *words.Words, c *trace.Column) string {
+	name := stock.KeyOf(in, c.Medium.Key)
 	if name == "" {
 		name = c.Medium.Name
 	}
 	if c.Dish {
-		name += ", dish"
+		name = in.Say("%s, dish", name)
 	}
 	return name
 }
@@ -365,7 +374,7 @@ func paletted(field []float32, pixels int, m *picture.ColourMap) image.Image {
 // ledger sets the numbers beside the maps.
 func (l *press) ledger(x, y float64) {
 	light := l.sheet.Light
-	t := l.body()
+	in, t := l.sheet.Words, l.body()
 	wide := (l.right() - x - 25*l.k) / float64(len(light.Columns))
 	row := func(name string, cell func(c *trace.Column) string, t drawing.Type) {
 		l.page.Write(l.body(), black(), drawing.Left, pt(x, y+0.78*t.Leading()), name)
@@ -374,24 +383,39 @@ func (l *press) ledger(x, y float64) {
 		}
 		y += t.Leading()
 	}
-	row("", func(c *trace.Column) string { return columnName(c) }, l.strong())
+	row("", func(c *trace.Column) string { return columnName(in, c) }, l.strong())
 	for q := trace.Surface; q <= trace.Absorbed; q++ {
-		row(q.String(), func(c *trace.Column) string { return fmt.Sprintf("%.3f", q.Of(c.Ledger)) }, t)
+		row(in.Say(shareName(q)), func(c *trace.Column) string { return in.Say("%.3f", q.Of(c.Ledger)) }, t)
 	}
-	row("critical angle", func(c *trace.Column) string {
+	row(in.Say("critical angle"), func(c *trace.Column) string {
 		if !c.HasCritical {
-			return "none"
+			return in.Say("none")
 		}
-		return fmt.Sprintf("%.1f°", c.Critical.Degrees())
+		return in.Say("%.1f°", c.Critical.Degrees())
 	}, t)
-	row("windowed area", func(c *trace.Column) string { return fmt.Sprintf("%.0f %%", 100*c.WindowedArea) }, t)
+	row(in.Say("windowed area"), func(c *trace.Column) string { return in.Say("%.0f %%", 100*c.WindowedArea) }, t)
 	worst := 0.0
 	for i := range light.Columns {
 		worst = max(worst, light.Columns[i].StandardError.Max())
 	}
-	note := fmt.Sprintf("shares of a viewing ray, ± %.3f; head of %s° in the way",
-		math.Ceil(worst*1000)/1000, trimmed(l.sheet.HeadDeg, 1))
+	note := in.Say("shares of a viewing ray, ± %.3f; head of %s° in the way",
+		math.Ceil(worst*1000)/1000, trimmed(in, l.sheet.HeadDeg, 1))
 	l.lines(t, pale(), x, y, l.right()-x, note)
+}
+
+// shareName returns what a share of the ledger is called.
+func shareName(q trace.Quantity) words.Key {
+	switch q {
+	case trace.Surface:
+		return "surface|what it mirrors"
+	case trace.Returned:
+		return "returned"
+	case trace.Head:
+		return "head"
+	case trace.Leaked:
+		return "leaked"
+	}
+	return "absorbed"
 }
 
 // tolerance sets the note on what errors cost.
@@ -400,32 +424,33 @@ func (l *press) tolerance() {
 	if s.LightModel {
 		return
 	}
-	var words []string
+	in := s.Words
+	var told []string
 	tier, far := s.longest()
 	if tier != "" {
-		words = append(words, fmt.Sprintf("An angle wrong by %.1f° moves the far end of the longest facet (%s, %.2f mm) "+
+		told = append(told, in.Say("An angle wrong by %.1f° moves the far end of the longest facet (%s, %.2f mm) "+
 			"by %.3f mm; a gap of %.2f mm shows.", toleranceAngle.Degrees(), tier, far, far*math.Tan(toleranceAngle.Radians()), facets.VisibleGap))
 	}
 	if w := s.criticalWords(); w != "" && !s.LeaveOut.Angles {
-		words = append(words, w)
+		told = append(told, w)
 	}
 	if w := s.miscutWords(); w != "" {
-		words = append(words, w)
+		told = append(told, w)
 	}
 	for _, g := range s.Solution.Gaps {
 		if g.Tier == "" || s.LeaveOut.Indices {
 			continue
 		}
-		words = append(words, fmt.Sprintf("%s misses %s by %.3f mm in the plan itself.", g.Tier, g.With, g.MM))
-		if len(words) > 5 {
+		told = append(told, in.Say("%s misses %s by %.3f mm in the plan itself.", g.Tier, g.With, g.MM))
+		if len(told) > 5 {
 			break
 		}
 	}
-	if len(words) == 0 {
+	if len(told) == 0 {
 		return
 	}
-	l.subhead("What an error costs", 2*l.body().Leading())
-	for _, w := range words {
+	l.subhead(in.Say("What an error costs"), 2*l.body().Leading())
+	for _, w := range told {
 		l.item(false, l.left(), l.width(), w)
 	}
 }
@@ -470,6 +495,7 @@ func (s *Sheet) criticalWords() string {
 	if flattest == nil {
 		return ""
 	}
+	in := s.Words
 	var parts []string
 	for i := range s.Light.Columns {
 		c := &s.Light.Columns[i]
@@ -477,32 +503,32 @@ func (s *Sheet) criticalWords() string {
 			continue
 		}
 		margin := (flattest.Solved.Angle - c.Critical).Degrees()
-		where := "above"
+		where := words.Key("%.1f° above it in %s")
 		if margin < 0 {
-			where = "below"
+			where = "%.1f° below it in %s"
 		}
-		parts = append(parts, fmt.Sprintf("%.1f° %s it in %s", math.Abs(margin), where, columnName(c)))
+		parts = append(parts, in.Say(where, math.Abs(margin), columnName(in, c)))
 	}
 	if len(parts) == 0 {
 		return ""
 	}
-	return fmt.Sprintf("Light that comes straight down meets %s, the flattest pavilion tier, at its own %.2f°. "+
+	return in.Say("Light that comes straight down meets %s, the flattest pavilion tier, at its own %.2f°. "+
 		"Past the critical angle it turns back, short of it most leaks: %s stands %s.",
-		flattest.Tier.Name, flattest.Solved.Angle.Degrees(), flattest.Tier.Name, listed(nil, parts))
+		flattest.Tier.Name, flattest.Solved.Angle.Degrees(), flattest.Tier.Name, listed(in, parts))
 }
 
 // care sets what to mind with this material.
 func (l *press) care() {
-	m := l.sheet.Material
-	l.subhead(m.Name+": take care", 2*l.body().Leading())
-	for _, words := range m.Cautions {
-		l.item(false, l.left(), l.width(), words)
+	in, m := l.sheet.Words, l.sheet.Material
+	l.subhead(in.Say("%s: take care", stock.NameOf(in, m)), 2*l.body().Leading())
+	for _, caution := range stock.CautionsOf(in, m) {
+		l.item(false, l.left(), l.width(), caution)
 	}
 	if len(m.Cautions) == 0 {
 		l.item(false, l.left(), l.width(),
-			"Nothing is known of this material's own dangers: ask its seller for a safety data sheet before cutting it.")
+			in.Say("Nothing is known of this material's own dangers: ask its seller for a safety data sheet before cutting it."))
 	}
 	if m.Toughness != "" {
-		l.item(false, l.left(), l.width(), "How it bears work: "+m.Toughness)
+		l.item(false, l.left(), l.width(), in.Say("How it bears work: %s", stock.ToughnessOf(in, m)))
 	}
 }

@@ -6,6 +6,7 @@ import (
 	"strings"
 
 	"pavilight/app/drawing"
+	"pavilight/app/stock"
 )
 
 // Paper is a size of paper, upright, mm.
@@ -88,7 +89,7 @@ func (l *press) start(part, bookmark string) {
 	l.pages = append(l.pages, l.page)
 	l.y = l.margin()
 	if l.sheet.LightModel {
-		l.banner("Light model, not cutting instructions: diamond is worked with other machines and training.")
+		l.banner(l.sheet.Words.Say("Light model, not cutting instructions: diamond is worked with other machines and training."))
 	}
 	if part != "" {
 		l.heading(part)
@@ -141,11 +142,12 @@ func (l *press) need(height float64) bool {
 	if l.y+height <= l.bottom() {
 		return false
 	}
-	part := l.part
-	if part != "" && !strings.HasSuffix(part, ", continued") {
-		part += ", continued"
+	part, head := l.part, ""
+	if part != "" {
+		head = l.sheet.Words.Say("%s, continued", part)
 	}
-	l.start(part, "")
+	l.start(head, "")
+	l.part = part
 	return true
 }
 
@@ -173,15 +175,15 @@ func tall(t drawing.Type, width float64, words string) float64 {
 }
 
 // short returns a text cut to a number of lines of a column; the whole of one that is
-// longer is kept for the notes under the given name.
-func (l *press) short(name, words string, width float64, most int) string {
+// longer is kept for the notes under the given heading.
+func (l *press) short(heading, words string, width float64, most int) string {
 	t := l.body()
 	wrapped := t.Wrap(words, width)
 	if len(wrapped) <= most {
 		return words
 	}
-	if !slices.ContainsFunc(l.notes, func(n fact) bool { return n.name == name }) {
-		l.notes = append(l.notes, fact{name, words})
+	if !slices.ContainsFunc(l.notes, func(n fact) bool { return n.name == heading }) {
+		l.notes = append(l.notes, fact{heading, words})
 	}
 	last := t.Cut(wrapped[most-1]+" "+wrapped[most], width-t.Width("…")-0.01)
 	return strings.Join(append(wrapped[:most-1:most-1], strings.TrimSuffix(last, "…")+"…"), "\n")
@@ -287,21 +289,21 @@ func (l *press) ruler(x, y float64) {
 		l.page.Line(s, pt(x+float64(mm), y), pt(x+float64(mm), y-tick))
 	}
 	t := l.body()
-	words := "50 mm: measure it; printed at 100 %, sizes on paper are true"
+	words := l.sheet.Words.Say("50 mm: measure it; printed at 100 %%, sizes on paper are true")
 	width := l.right() - x - long - 2
 	l.lines(t, black(), x+long+2, y-tall(t, width, words)+0.22*t.Leading(), width, words)
 }
 
 // foot writes the foot of every page.
 func (l *press) foot() {
-	t := l.body()
+	in, t := l.sheet.Words, l.body()
 	for i, page := range l.pages {
 		y := l.sheet.Paper.Height - l.margin()
 		page.Line(drawing.Style{Stroke: drawing.Grey(0x90), Width: thin},
 			pt(l.left(), y-t.Leading()), pt(l.right(), y-t.Leading()))
-		of := fmt.Sprintf("page %d of %d", i+1, len(l.pages))
+		of := in.Say("page %d of %d", i+1, len(l.pages))
 		page.Write(t, pale(), drawing.Right, pt(l.right(), y), of)
-		name := joined(", ", l.sheet.Plan.Name, l.sheet.Material.Name, l.sheet.Copy)
+		name := joined(", ", l.sheet.Plan.Name, stock.NameOf(in, l.sheet.Material), in.Say(l.sheet.Copy))
 		page.Write(t, pale(), drawing.Left, pt(l.left(), y), t.Cut(name, l.width()-t.Width(of)-4))
 	}
 }

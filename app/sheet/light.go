@@ -2,10 +2,10 @@ package sheet
 
 import (
 	"context"
-	"fmt"
 	"math"
 	"strings"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/trace"
@@ -105,17 +105,26 @@ func (s *Sheet) miscutWords() string {
 	if s.Light == nil || len(s.Miscuts) == 0 {
 		return ""
 	}
-	c := &s.Light.Columns[0]
+	in, c := s.Words, &s.Light.Columns[0]
 	worst := c.StandardError.Returned
 	var parts []string
 	for _, m := range s.Miscuts {
-		how := "steeper"
-		if m.By < 0 {
-			how = "flatter"
-		}
-		parts = append(parts, fmt.Sprintf("%.3f with the %v %.1f° %s", m.Return, m.Side, math.Abs(m.By.Degrees()), how))
+		parts = append(parts, in.Say(m.told(), m.Return, math.Abs(m.By.Degrees())))
 		worst = max(worst, m.Error)
 	}
-	return fmt.Sprintf("Light return in %s: %.3f as planned; %s; each ± %.3f.", columnName(c), c.Ledger.Returned,
+	return in.Say("Light return in %s: %.3f as planned; %s; each ± %.3f.", columnName(in, c), c.Ledger.Returned,
 		strings.Join(parts, ", "), math.Ceil(worst*1000)/1000)
+}
+
+// told is how a miscut is told, with its light return and its angle filled in.
+func (m Miscut) told() words.Key {
+	switch {
+	case m.Side == facets.Crown && m.By < 0:
+		return "%.3f with the crown %.1f° flatter"
+	case m.Side == facets.Crown:
+		return "%.3f with the crown %.1f° steeper"
+	case m.By < 0:
+		return "%.3f with the pavilion %.1f° flatter"
+	}
+	return "%.3f with the pavilion %.1f° steeper"
 }

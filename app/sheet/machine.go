@@ -1,6 +1,7 @@
 package sheet
 
 import (
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
@@ -20,13 +21,16 @@ type Machine struct {
 	Grit           []string     // the user's own notes on laps and grits, printed as they stand
 }
 
+// plainName is what the machine of a user who has described none is called.
+const plainName words.Key = "plain machine, none named"
+
 // Plain is the machine of a user who has described none. It reverses the crown's
 // numbers, because a stone that is turned over end for end on a keyed dop shows
 // its azimuths the other way round; it adds nothing to the angles, and can shift
 // the index by half a tooth of any gear from 32 teeth on.
 func Plain() Machine {
 	return Machine{
-		Name:          "plain machine, none named",
+		Name:          plainName.English(),
 		AngleStep:     0.01 * facets.Degree,
 		Cheater:       6 * facets.Degree,
 		CrownReversed: true,

@@ -1,10 +1,10 @@
 package sheet
 
 import (
-	"fmt"
 	"strings"
 
 	"pavilight/app/drawing"
+	"pavilight/app/words"
 )
 
 // otherGears sets the indices on further gears, with the facets that do not fit.
@@ -13,9 +13,10 @@ func (l *press) otherGears() {
 	if len(s.Gears) == 0 || s.LeaveOut.Indices {
 		return
 	}
-	l.start("Other gears – "+s.Plan.Name, "Other gears")
-	l.paragraph(l.body(), pale(), "An index with a sign lies between teeth: the tooth, and what the cheater adds. "+
-		"Tiers marked × do not fit the gear.")
+	in := s.Words
+	l.start(in.Say("Other gears – %s", s.Plan.Name), in.Say("Other gears|on the sheet"))
+	l.paragraph(l.body(), pale(), in.Say("An index with a sign lies between teeth: the tooth, and what the cheater adds. "+
+		"Tiers marked × do not fit the gear."))
 	for _, gear := range s.Gears {
 		m := s.Machine
 		m.TransferIndex = ToGear(m.TransferIndex, m.Gear, gear)
@@ -23,7 +24,7 @@ func (l *press) otherGears() {
 		off := 0
 		type lineOf struct {
 			name  string
-			words []string
+			index []string
 		}
 		var table []lineOf
 		for i := range s.Rows {
@@ -50,19 +51,20 @@ func (l *press) otherGears() {
 			} else {
 				settings = lapOrder(settings, gear)
 			}
-			table = append(table, lineOf{name, settingWords(settings)})
+			table = append(table, lineOf{name, settingWords(in, settings)})
 		}
-		head := fmt.Sprintf("Gear of %d, %s° a tooth: every facet fits", gear, trimmed(360/float64(gear), 4))
+		tooth := trimmed(in, 360/float64(gear), 4)
+		head := in.Say("Gear of %d, %s° a tooth: every facet fits", gear, tooth)
 		if off > 0 {
-			head = fmt.Sprintf("Gear of %d, %s° a tooth: %d facets do not fit", gear, trimmed(360/float64(gear), 4), off)
+			head = in.Say("Gear of %d, %s° a tooth: %d facets do not fit", gear, tooth, off)
 		}
 		l.subhead(head, 3*l.index().Leading())
 		x := l.left() + 26*l.k
 		for _, row := range table {
-			h := l.grid(l.index(), x, l.y, l.right()-x, row.words, false)
+			h := l.grid(l.index(), x, l.y, l.right()-x, row.index, false)
 			l.need(h)
 			l.lines(l.tier(), black(), l.left(), l.y, 25*l.k, row.name)
-			l.grid(l.index(), x, l.y, l.right()-x, row.words, true)
+			l.grid(l.index(), x, l.y, l.right()-x, row.index, true)
 			l.y += max(h, tall(l.tier(), 25*l.k, row.name)) + 0.6
 		}
 	}
@@ -71,24 +73,25 @@ func (l *press) otherGears() {
 // mind sets polishing, the user's own notes, and the cautions.
 func (l *press) mind() {
 	s := l.sheet
-	l.begin("Polish, notes and care – "+s.Plan.Name, "Polish, notes and care", 0.45*s.Paper.Height)
+	in := s.Words
+	l.begin(in.Say("Polish, notes and care – %s", s.Plan.Name), in.Say("Polish, notes and care"), 0.45*s.Paper.Height)
 	for _, part := range l.later {
 		part()
 	}
 	for _, n := range l.notes {
-		l.subhead("Notes on "+n.name, 2*l.body().Leading())
+		l.subhead(n.name, 2*l.body().Leading())
 		l.paragraph(l.body(), black(), n.value)
 	}
 	if !s.LightModel {
 		if len(s.Plan.Polish) > 0 {
-			l.subhead("Polish", l.body().Leading())
-			for _, words := range s.Plan.Polish {
-				l.item(true, l.left(), l.width(), words)
+			l.subhead(in.Say("Polish"), l.body().Leading())
+			for _, step := range s.Plan.Polish {
+				l.item(true, l.left(), l.width(), step)
 			}
 		}
-		l.subhead("Laps and grits", 4*l.body().Leading())
-		for _, words := range s.Machine.Grit {
-			l.item(false, l.left(), l.width(), words)
+		l.subhead(in.Say("Laps and grits"), 4*l.body().Leading())
+		for _, note := range s.Machine.Grit {
+			l.item(false, l.left(), l.width(), note)
 		}
 		for range max(0, 3-len(s.Machine.Grit)) {
 			l.y += 7 * l.k
@@ -97,28 +100,26 @@ func (l *press) mind() {
 		l.y += 3
 	}
 	if !s.LightModel {
-		l.subhead("At every stone", 2*l.body().Leading())
-		for _, words := range benchCautions() {
-			l.item(false, l.left(), l.width(), words)
+		l.subhead(in.Say("At every stone"), 2*l.body().Leading())
+		for _, caution := range benchCautions() {
+			l.item(false, l.left(), l.width(), in.Say(caution))
 		}
 	}
-	l.subhead("What this sheet is", 2*l.body().Leading())
-	l.paragraph(l.body(), black(), "Shape and light are computed from the plan. "+
-		"The maps are a model: they grade no stone and replace no laboratory. Not modelled: inclusions, haze, colour zones, fluorescence, fracture filling.")
+	l.subhead(in.Say("What this sheet is"), 2*l.body().Leading())
+	l.paragraph(l.body(), black(), in.Say("Shape and light are computed from the plan. "+
+		"The maps are a model: they grade no stone and replace no laboratory. Not modelled: inclusions, haze, colour zones, fluorescence, fracture filling."))
 	if !s.LeaveOut.Any() {
-		l.paragraph(l.body(), black(), "The plan file travels inside this PDF as an attachment; saved from there it opens in Pavilight again.")
+		l.paragraph(l.body(), black(), in.Say("The plan file travels inside this PDF as an attachment; saved from there it opens in Pavilight again."))
 	}
 	if l.lacking {
-		l.paragraph(l.body(), black(), fmt.Sprintf("%c stands for a letter that this sheet's typeface does not hold: "+
-			"it has Latin, Greek and Cyrillic. The attached plan keeps the full text.", drawing.Missing))
+		l.paragraph(l.body(), black(), in.Say("%s stands for a letter that this sheet's typeface does not hold: "+
+			"it has Latin, Greek and Cyrillic. The attached plan keeps the full text.", string(drawing.Missing)))
 	}
 	l.y += 3
 	l.need(14)
 	l.y += 7 * l.k
-	l.say(l.body(), black(), l.left(), l.y, "Cut by")
-	l.blank(l.left()+13*l.k, l.y, l.width()/2-18*l.k)
-	l.say(l.body(), black(), l.left()+l.width()/2, l.y, "on")
-	l.blank(l.left()+l.width()/2+7*l.k, l.y, l.width()/2-7*l.k)
+	l.signed(l.left(), l.width()/2-5*l.k, 13*l.k, in.Say("Cut by"))
+	l.signed(l.left()+l.width()/2, l.width()/2, 7*l.k, in.Say("on|a day"))
 	l.y += 4
 	l.paragraph(l.body(), pale(), strings.TrimSpace(s.Program))
 	l.need(12)
@@ -126,11 +127,18 @@ func (l *press) mind() {
 	l.y += 12
 }
 
+// signed sets a line to write on after its name, which gets at least the given room.
+func (l *press) signed(x, width, room float64, name string) {
+	room = max(room, l.body().Width(name)+2)
+	l.say(l.body(), black(), x, l.y, name)
+	l.blank(x+room, l.y, width-room)
+}
+
 // benchCautions are the dangers of the bench whatever the stone. Sources: the usual
 // cautions of lapidary work (common practice, no source), and for dust the US limits
 // that the materials' own cautions quote.
-func benchCautions() []string {
-	return []string{
+func benchCautions() []words.Key {
+	return []words.Key{
 		"Wear eye protection. Keep hair, sleeves, cords and gloves away from moving laps and spindles.",
 		"Cut wet: dust of stones, laps and metal oxides harms the lungs. Wipe up wet, never blow or sweep dry.",
 		"Water and mains: use a residual-current switch and a drip loop, and keep hands dry at plugs and switches.",

@@ -6,6 +6,7 @@ import (
 	"strings"
 
 	"pavilight/app/drawing"
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
@@ -31,12 +32,18 @@ func (s *Sheet) Pages() []*drawing.Page {
 	return l.pages
 }
 
-// sideName returns the heading of a side.
-func sideName(facing facets.Side) string {
-	if facing == facets.Crown {
+// sideName returns the heading of a side; where nothing is told of the light alone, the
+// side that lies to the lap.
+func (s *Sheet) sideName(facing facets.Side) words.Key {
+	switch {
+	case s.LightModel && facing == facets.Crown:
 		return "Crown"
+	case s.LightModel:
+		return "Pavilion"
+	case facing == facets.Crown:
+		return "Crown to the lap"
 	}
-	return "Pavilion"
+	return "Pavilion to the lap"
 }
 
 // side sets the steps from a row on until the stone is turned.
@@ -47,10 +54,7 @@ func (l *press) side(first int) {
 	for last < len(s.Rows) && !s.Rows[last].Turn {
 		last++
 	}
-	name := sideName(facing) + " to the lap"
-	if s.LightModel {
-		name = sideName(facing)
-	}
+	name := s.Words.Say(s.sideName(facing))
 	l.start(joined(" – ", name, s.Plan.Name), name)
 	if first > 0 && !s.LightModel {
 		l.turn(&s.Rows[first])
@@ -64,21 +68,22 @@ func (l *press) side(first int) {
 
 // turn sets the step in which the stone is turned.
 func (l *press) turn(r *Row) {
-	words := l.sheet.turnWords(r.Facing)
+	told := l.sheet.turnWords(r.Facing)
 	if x := r.Tier.Transfer; x != nil && x.Note != "" && !l.sheet.LeaveOut.Any() {
-		words += " " + x.Note
+		told += " " + x.Note
 	}
 	t := l.body()
-	height := tall(t, l.width()-14, words) + 3
+	height := tall(t, l.width()-14, told) + 3
 	l.page.Rectangle(drawing.Style{Stroke: black(), Width: medium}, pt(l.left(), l.y), l.width(), height)
 	l.box(l.left()+2, l.y+1.8, 3.1*l.k)
-	l.lines(t, black(), l.left()+8, l.y+1.5, l.width()-14, words)
+	l.lines(t, black(), l.left()+8, l.y+1.5, l.width()-14, told)
 	l.y += height + 2.5
 }
 
 // overview draws the side within the ring of the gear, with the sizes to take.
 func (l *press) overview(facing facets.Side) {
 	s := l.sheet
+	in := s.Words
 	edge := min(0.6*l.width(), 0.42*s.Paper.Height)
 	d := ringDrawing{sheet: s, facing: facing, type_: l.body()}
 	top := l.y
@@ -86,17 +91,16 @@ func (l *press) overview(facing facets.Side) {
 	x := l.left() + edge + 4
 	width := l.right() - x
 	y := top
-	from := "Seen from above"
+	from := words.Key("Seen from above, drawn %s : 1. %s")
 	if facing == facets.Pavilion {
-		from = "Seen from below"
+		from = "Seen from below, drawn %s : 1. %s"
 	}
-	words := fmt.Sprintf("%s, drawn %s : 1. %s", from, trimmed(scale, 2), l.ringWords(facing, left))
-	y += l.lines(l.body(), pale(), x, y, width, words)
+	y += l.lines(l.body(), pale(), x, y, width, in.Say(from, trimmed(in, scale, 2), l.ringWords(facing, left)))
 	y += 2
-	y += l.lines(l.strong(), black(), x, y, width, "Sizes")
+	y += l.lines(l.strong(), black(), x, y, width, in.Say("Sizes"))
 	y += 0.5
 	for _, z := range s.Sizes(facing) {
-		value := z.String()
+		value := z.In(in)
 		h := l.lines(l.body(), black(), x, y, width-l.strong().Width(value)-2, z.What)
 		l.page.Write(l.strong(), black(), drawing.Right, pt(x+width, y+l.body().Leading()*0.78), value)
 		y += h + 0.8
@@ -112,7 +116,7 @@ func (l *press) overview(facing facets.Side) {
 		v.solid(l.page, s.Solution.Stone, nil, 1)
 		v.labels(l.page, s.Solution.Stone, l.body())
 		l.page.Write(l.body(), pale(), drawing.Middle, pt(x+width/2, top+edge-0.3*l.body().Leading()),
-			fmt.Sprintf("From the side, index %d near, %s : 1", l.nearIndex(facing), trimmed(v.Scale, 2)))
+			in.Say("From the side, index %d near, %s : 1", l.nearIndex(facing), trimmed(in, v.Scale, 2)))
 	}
 	l.y = max(top+edge, y) + 2
 }
@@ -126,22 +130,22 @@ func (l *press) nearIndex(facing facets.Side) int {
 
 // ringWords tells what the ring shows.
 func (l *press) ringWords(facing facets.Side, left []string) string {
-	m := &l.sheet.Machine
-	if l.sheet.LightModel {
-		return fmt.Sprintf("The ring is the plan's gear of %d.", m.Gear)
+	in, m := l.sheet.Words, &l.sheet.Machine
+	var told string
+	switch {
+	case l.sheet.LightModel:
+		return in.Say("The ring is the plan's gear of %d.", m.Gear)
+	case l.sheet.LeaveOut.Indices:
+		told = in.Say("The ring has %d teeth, index %d up.", m.Gear, m.Gear)
+	case facing == facets.Crown && m.CrownReversed:
+		told = in.Say("The ring is the gear of %d as the machine shows it on this side, after transfer.", m.Gear)
+	default:
+		told = in.Say("The ring is the gear of %d as the machine shows it on this side.", m.Gear)
 	}
-	words := fmt.Sprintf("The ring is the gear of %d as the machine shows it on this side", m.Gear)
-	if l.sheet.LeaveOut.Indices {
-		words = fmt.Sprintf("The ring has %d teeth, index %d up", m.Gear, m.Gear)
-	}
-	if facing == facets.Crown && m.CrownReversed && !l.sheet.LeaveOut.Indices {
-		words += ", after transfer"
-	}
-	words += "."
 	if len(left) > 0 {
-		words += " Too small for their name: " + listed(nil, left) + "; see the steps."
+		told = in.Say("%s Too small for their name: %s; see the steps.", told, listed(in, left))
 	}
-	return words
+	return told
 }
 
 // columns of the table of steps, mm.
@@ -171,8 +175,8 @@ func (l *press) columns() columns {
 	// The indices get what the longest tier needs at eight a line, within bounds.
 	need := 0.0
 	for i := range l.sheet.Rows {
-		words := l.indexWords(&l.sheet.Rows[i])
-		need = max(need, l.gridWidth(l.index(), words[:min(len(words), 8)]))
+		index := l.indexWords(&l.sheet.Rows[i])
+		need = max(need, l.gridWidth(l.index(), index[:min(len(index), 8)]))
 	}
 	free := c.end - c.index
 	c.stop = c.index + min(max(need+columnGap, 0.25*free), 0.5*free)
@@ -224,17 +228,17 @@ func (l *press) parts(c columns, rows []Row) []Row {
 }
 
 func (l *press) tableHead(c columns) {
-	t := l.strong()
+	in, t := l.sheet.Words, l.strong()
 	l.need(3 * t.Leading())
 	y := l.y + t.Leading()*0.78
-	l.say(t, black(), c.tier, y, "Tier")
-	l.say(t, black(), c.angle, y, "Angle")
-	l.say(t, black(), c.index, y, "Index")
-	last := "Cut"
+	l.say(t, black(), c.tier, y, in.Say("Tier"))
+	l.say(t, black(), c.angle, y, in.Say("Angle"))
+	l.say(t, black(), c.index, y, in.Say("Index"))
+	last := words.Key("Cut|how far")
 	if l.sheet.LightModel {
 		last = "Facets"
 	}
-	l.say(t, black(), c.stop, y, last)
+	l.say(t, black(), c.stop, y, in.Say(last))
 	l.y += t.Leading() + 0.6
 	l.rule(l.y)
 }
@@ -250,14 +254,14 @@ func (l *press) angleWords(r *Row) (big, small string) {
 	if s.LeaveOut.Angles {
 		return "", ""
 	}
-	big = fmt.Sprintf("%.*f°", s.Machine.decimals(), r.Reading.Degrees())
+	in := s.Words
+	big = in.Decimal(fmt.Sprintf("%.*f°", s.Machine.decimals(), r.Reading.Degrees()))
 	switch {
 	case r.Flat && s.Machine.TableAdapter > 0:
-		small = fmt.Sprintf("with the adapter of %s°", trimmed(s.Machine.TableAdapter.Degrees(), 2))
-	case s.Machine.offset(r.Facing) != 0:
-		small = fmt.Sprintf("plan %.2f°", r.Solved.Angle.Degrees())
-	case math.Abs(r.Miss.Degrees()) > 0.0051: // more than rounding to a hundredth
-		small = fmt.Sprintf("plan %.2f°", r.Solved.Angle.Degrees())
+		small = in.Say("with the adapter of %s°", trimmed(in, s.Machine.TableAdapter.Degrees(), 2))
+	case s.Machine.offset(r.Facing) != 0,
+		math.Abs(r.Miss.Degrees()) > 0.0051: // more than rounding to a hundredth
+		small = in.Say("plan %.2f°", r.Solved.Angle.Degrees())
 	}
 	return big, small
 }
@@ -268,9 +272,9 @@ func (l *press) indexWords(r *Row) []string {
 	case l.sheet.LeaveOut.Indices:
 		return nil
 	case r.Flat:
-		return []string{"any, as " + r.Settings[0].String()}
+		return []string{l.sheet.Words.Say("any, as %s", r.Settings[0].In(l.sheet.Words))}
 	default:
-		return settingWords(r.Settings)
+		return settingWords(l.sheet.Words, r.Settings)
 	}
 }
 
@@ -280,24 +284,23 @@ const mostNoteLines = 6
 // cutWords returns when to stop and what the step does.
 func (l *press) cutWords(c columns, r *Row) (main, small string) {
 	s := l.sheet
+	in := s.Words
 	switch {
 	case s.LightModel:
 		return s.areaWords(r.Tier.Name), ""
 	case s.LeaveOut.Stops:
-	case s.LeaveOut.Indices:
-		main = r.StopShort
 	default:
-		main = r.Stop
+		main = s.stopWords(in, r, !s.LeaveOut.Indices)
 	}
 	var parts []string
 	if r.Tier.Temporary {
-		parts = append(parts, "for now; later cuts take it off")
+		parts = append(parts, in.Say("for now; later cuts take it off"))
 	}
 	if r.Tier.Stage != "" && r.Tier.Stage != "cut" {
-		parts = append(parts, r.Tier.Stage)
+		parts = append(parts, in.Among([]words.Key{"preform", "polish"}, r.Tier.Stage))
 	}
 	if !s.LeaveOut.Any() && r.Tier.Note != "" {
-		parts = append(parts, l.short("tier "+r.Tier.Name, r.Tier.Note, c.end-c.stop, mostNoteLines))
+		parts = append(parts, l.short(in.Say("Notes on tier %s", r.Tier.Name), r.Tier.Note, c.end-c.stop, mostNoteLines))
 	}
 	return main, strings.Join(parts, "; ")
 }
@@ -311,9 +314,9 @@ func (s *Sheet) areaWords(tier string) string {
 		}
 	}
 	if n == 1 {
-		return fmt.Sprintf("1, %.2f mm²", area)
+		return s.Words.Say("1, %.2f mm²", area)
 	}
-	return fmt.Sprintf("%d, %.2f mm² in all", n, area)
+	return s.Words.Say("%d, %.2f mm² in all", n, area)
 }
 
 func (l *press) rowHeight(c columns, r *Row) float64 {
@@ -387,20 +390,21 @@ func (l *press) between(rows []Row) {
 	if l.sheet.LeaveOut.Indices {
 		return
 	}
-	var words []string
+	in := l.sheet.Words
+	var told []string
 	for i := range rows {
 		for _, set := range rows[i].Settings {
-			if set.Part != 0 && len(words) < 4 {
-				words = append(words, set.Words())
+			if set.Part != 0 && len(told) < 4 {
+				told = append(told, set.Words(in))
 			}
 		}
 	}
-	if len(words) == 0 {
+	if len(told) == 0 {
 		return
 	}
-	text := "Between teeth: " + strings.Join(words, "; ") + ". Plus is toward higher numbers. " +
-		"Mind the cheater: set it back before the next tier, and cut these facets by eye to their corners."
-	l.paragraph(l.strong(), black(), text)
+	l.paragraph(l.strong(), black(), in.Say("Between teeth: %s. Plus is toward higher numbers. "+
+		"Mind the cheater: set it back before the next tier, and cut these facets by eye to their corners.",
+		strings.Join(told, "; ")))
 	l.y += 1
 }
 
@@ -410,25 +414,25 @@ func (l *press) checks(facing facets.Side) {
 	if len(list) == 0 {
 		return
 	}
-	head := "Before it leaves the dop"
+	head := words.Key("Before it leaves the dop")
 	if l.sheet.turnAfter(facing) {
 		head = "Before transfer"
 	}
 	all := 0.0
-	for _, words := range list {
-		all += tall(l.body(), l.width()-5.5*l.k, words) + 1.1*l.k
+	for _, check := range list {
+		all += tall(l.body(), l.width()-5.5*l.k, check) + 1.1*l.k
 	}
-	l.subhead(head, min(all, 80))
-	for _, words := range list {
-		l.item(true, l.left(), l.width(), words)
+	l.subhead(l.sheet.Words.Say(head), min(all, 80))
+	for _, check := range list {
+		l.item(true, l.left(), l.width(), check)
 	}
 }
 
 // trimmed writes a number with at most the given decimals.
-func trimmed(v float64, decimals int) string {
+func trimmed(in *words.Words, v float64, decimals int) string {
 	text := fmt.Sprintf("%.*f", decimals, v)
 	if strings.Contains(text, ".") {
 		text = strings.TrimRight(strings.TrimRight(text, "0"), ".")
 	}
-	return text
+	return in.Decimal(text)
 }

@@ -21,8 +21,6 @@ type Row struct {
 	Reading    facets.Angle // what the angle scale is set to
 	Miss       facets.Angle // by how much that is off the plan, for want of finer steps
 	Settings   []Setting    // of its facets, in the order in which to cut them; one for a flat
-	Stop       string       // when to stop, in words
-	StopShort  string       // the same without indices
 	Step       facets.Step
 	TooDeepMM  float64 // height or width that TooDeep costs
 	TooDeepPct float64 // weight that it costs where the rough has nothing to spare, percent
@@ -61,7 +59,6 @@ func (s *Sheet) rows(steps []facets.Step) ([]Row, error) {
 		} else {
 			r.Settings = lapOrder(r.Settings, s.Machine.Gear)
 		}
-		r.Stop, r.StopShort = s.stopWords(nil, &r, true), s.stopWords(nil, &r, false)
 		r.TooDeepMM, r.TooDeepPct = s.tooDeep(&r)
 		rows = append(rows, r)
 	}

@@ -6,6 +6,7 @@ import (
 	"slices"
 	"strconv"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
@@ -20,16 +21,19 @@ type Setting struct {
 // write four decimals, and the rounding of a change of gear is far below.
 const nearTooth = 5e-5
 
-// String returns what the cutter sets: 12, or 12+1.50° with a cheater.
+// String returns what the cutter sets, in English: 12, or 12+1.50° with a cheater.
 func (s Setting) String() string {
 	if s.Cheater == 0 {
 		return strconv.Itoa(s.Tooth)
 	}
-	return fmt.Sprintf("%d%s", s.Tooth, signed(s.Cheater.Degrees(), 2)+"°")
+	return fmt.Sprintf("%d%s", s.Tooth, signed(nil, s.Cheater.Degrees(), 2)+"°")
 }
 
+// In returns what the cutter sets as a language writes it.
+func (s Setting) In(in *words.Words) string { return in.Decimal(s.String()) }
+
 // Words returns the setting in full: 12 + 0.4 tooth = 1.50 degrees.
-func (s Setting) Words() string {
+func (s Setting) Words(in *words.Words) string {
 	if s.Cheater == 0 {
 		return strconv.Itoa(s.Tooth)
 	}
@@ -38,12 +42,13 @@ func (s Setting) Words() string {
 		sign = "−"
 	}
 	part := strconv.FormatFloat(math.Round(math.Abs(s.Part)*100)/100, 'f', -1, 64)
-	return fmt.Sprintf("%d %s %s tooth = %s degrees", s.Tooth, sign, part, rounded(math.Abs(s.Cheater.Degrees()), 2))
+	return in.Say("%d %s %s tooth = %s degrees", s.Tooth, sign, in.Decimal(part),
+		in.Decimal(rounded(math.Abs(s.Cheater.Degrees()), 2)))
 }
 
 // signed writes a number with its sign, a true minus for negative ones.
-func signed(v float64, decimals int) string {
-	text := rounded(math.Abs(v), decimals)
+func signed(in *words.Words, v float64, decimals int) string {
+	text := in.Decimal(rounded(math.Abs(v), decimals))
 	if v < 0 {
 		return "−" + text
 	}
@@ -190,10 +195,10 @@ func oppositesFirst(settings []Setting, gear int) []Setting {
 }
 
 // settingWords writes settings, each for itself.
-func settingWords(settings []Setting) []string {
-	var words []string
+func settingWords(in *words.Words, settings []Setting) []string {
+	var told []string
 	for _, s := range settings {
-		words = append(words, s.String())
+		told = append(told, s.In(in))
 	}
-	return words
+	return told
 }

@@ -63,8 +63,8 @@ func TestSettingWords(t *testing.T) {
 		{12.00004, "12", "12"},
 	} {
 		got := m.Setting(row.shown)
-		if got.String() != row.short || got.Words() != row.words {
-			t.Errorf("%g: %q, %q; want %q, %q", row.shown, got, got.Words(), row.short, row.words)
+		if got.String() != row.short || got.Words(nil) != row.words {
+			t.Errorf("%g: %q, %q; want %q, %q", row.shown, got, got.Words(nil), row.short, row.words)
 		}
 	}
 }
@@ -134,8 +134,8 @@ func TestOrders(t *testing.T) {
 		{"between teeth", []float64{48.4, 0.4}, "96+1.50° 48+1.50°", "96+1.50° 48+1.50°"},
 		{"one", []float64{5}, "5", "5"},
 	} {
-		lap := strings.Join(settingWords(lapOrder(settings(row.given...), 96)), " ")
-		opposites := strings.Join(settingWords(oppositesFirst(settings(row.given...), 96)), " ")
+		lap := strings.Join(settingWords(nil, lapOrder(settings(row.given...), 96)), " ")
+		opposites := strings.Join(settingWords(nil, oppositesFirst(settings(row.given...), 96)), " ")
 		if lap != row.lap || opposites != row.opposites {
 			t.Errorf("%s: lap %q, opposites %q; want %q, %q", row.name, lap, opposites, row.lap, row.opposites)
 		}

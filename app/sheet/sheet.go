@@ -1,6 +1,7 @@
 // Package sheet makes the sheet that goes to the bench: a cut plan in the terms of
 // the user's machine, with drawings, sizes, check lists and cautions, on pages of
-// paper.
+// paper. It speaks the language that its Job names; what the plan's author and the
+// machine's owner wrote stands as they wrote it.
 //
 // Everything on a sheet follows from a Job; equal jobs give equal pages. Drawings
 // follow the plan: index 0 points up the picture, indices grow anticlockwise seen
@@ -36,12 +37,24 @@ type Job struct {
 	Opposites bool // indices with the opposite ones first, else in the order of the gear
 	Gears     []int
 	LeaveOut  LeaveOut
-	Copy      string // whose copy it is, as "teacher's copy"; empty for the usual one
+	Copy      words.Key // PupilsCopy or TeachersCopy; empty for the usual one
 
-	Program string    // the program and its version
-	Workers int       // of Trace; 0 for all cores
-	Date    time.Time // of the PDF; the zero Date is allowed
+	Words   *words.Words // the language of the pages; nil for English
+	Program string       // the program and its version
+	Workers int          // of Trace; 0 for all cores
+	Date    time.Time    // of the PDF; the zero Date is allowed
 }
+
+// The copies that are made where parts are left out.
+const (
+	PupilsCopy   words.Key = "pupil's copy"
+	TeachersCopy words.Key = "teacher's copy"
+)
+
+// ShapeAlone are the notes of a plan that is made from a stone's shape, in English; the
+// sheet says them in its own language.
+const ShapeAlone words.Key = "Made from the shape alone. What the facets were cut to meet is not known: " +
+	"every tier stops by distance."
 
 // LeaveOut names the parts that a pupil has to find.
 type LeaveOut struct {
@@ -116,11 +129,12 @@ func (s *Sheet) Document() (*drawing.Document, error) {
 func document(sheets []*Sheet, pages []*drawing.Page, title string) (*drawing.Document, error) {
 	first := sheets[0]
 	d := &drawing.Document{
-		Title:   joined(", ", title, first.Copy),
-		Subject: "cutting sheet",
-		Creator: first.Program,
-		Date:    first.Date,
-		Pages:   pages,
+		Title:    joined(", ", title, first.Words.Say(first.Copy)),
+		Subject:  first.Words.Say("cutting sheet"),
+		Language: first.Words.Language(),
+		Creator:  first.Program,
+		Date:     first.Date,
+		Pages:    pages,
 	}
 	used := map[string]bool{}
 	for _, s := range sheets {
@@ -144,7 +158,7 @@ func document(sheets []*Sheet, pages []*drawing.Page, title string) (*drawing.Do
 		}
 		used[name] = true
 		d.Attachments = append(d.Attachments, drawing.Attachment{
-			Name: name, About: "the cut plan of this sheet, for " + s.Program, Content: text.Bytes(),
+			Name: name, About: s.Words.Say("the cut plan of this sheet, for %s", s.Program), Content: text.Bytes(),
 		})
 	}
 	return d, nil
@@ -161,7 +175,8 @@ func joined(with string, parts ...string) string {
 	return strings.Join(full, with)
 }
 
-// Notes returns what the user should know that is no error.
+// Notes returns what the user should know that is no error, in the language of whoever
+// asks, which need not be the sheet's.
 func (s *Sheet) Notes(in *words.Words) []string {
 	var notes []string
 	between := 0

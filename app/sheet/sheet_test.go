@@ -490,7 +490,7 @@ func TestSheetsAreSmall(t *testing.T) {
 func TestPupilsCopyTellsNothing(t *testing.T) {
 	job := lit(t, sampleJob(t, "twist.toml"))
 	job.LeaveOut = LeaveOut{Angles: true, Indices: true, Stops: true}
-	job.Copy = "pupil's copy"
+	job.Copy = PupilsCopy
 	job.Gears = []int{64}
 	s := sheetOf(t, job)
 	pdf := pdfOf(t, s)
@@ -500,7 +500,7 @@ func TestPupilsCopyTellsNothing(t *testing.T) {
 		if angle := fmt.Sprintf("%.2f°", r.Solved.Angle.Degrees()); strings.Contains(text, angle) {
 			t.Errorf("the text tells the angle %s of %s", angle, r.Tier.Name)
 		}
-		if strings.Contains(text, r.Stop) || r.Tier.Note != "" && strings.Contains(text, r.Tier.Note) {
+		if strings.Contains(text, s.StopIn(nil, r)) || r.Tier.Note != "" && strings.Contains(text, r.Tier.Note) {
 			t.Errorf("the text tells when to stop %s", r.Tier.Name)
 		}
 	}
@@ -580,7 +580,7 @@ distance = 0.2
 func TestBetweenTeeth(t *testing.T) {
 	job := jobOf(t, planOf(t, gappedPlan))
 	s := sheetOf(t, job)
-	if got := strings.Join(settingWords(s.Rows[0].Settings), " "); got != "12+1.50° 36+1.50° 60+1.50° 84+1.50°" {
+	if got := strings.Join(settingWords(nil, s.Rows[0].Settings), " "); got != "12+1.50° 36+1.50° 60+1.50° 84+1.50°" {
 		t.Errorf("settings are %q", got)
 	}
 	text := poppler(t, pdfOf(t, s), "pdftotext", "-layout", "FILE", "-")

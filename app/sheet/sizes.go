@@ -1,71 +1,69 @@
 package sheet
 
 import (
-	"fmt"
 	"math"
 	"slices"
-	"strings"
 
+	"pavilight/app/words"
 	"pavilight/facets"
 )
 
 // Size is a length that a caliper or a depth gauge can take on the stone.
 type Size struct {
-	What string
+	What string // it is, in the language of the sheet
 	MM   float64
 	Most float64 // where the length differs round the stone: its largest; else 0
 }
 
-// String returns the size in mm.
-func (z Size) String() string {
+// In returns the size in mm as a language writes it.
+func (z Size) In(in *words.Words) string {
 	if z.Most > z.MM+0.005 {
-		return fmt.Sprintf("%.2f to %.2f mm", z.MM, z.Most)
+		return in.Say("%.2f to %.2f mm", z.MM, z.Most)
 	}
-	return fmt.Sprintf("%.2f mm", z.MM)
+	return in.Say("%.2f mm", z.MM)
 }
 
-// sizes writes lengths: 8.00 × 8.00 × 4.90 mm.
-func sizes(mm ...float64) string {
-	var words []string
-	for _, v := range mm {
-		words = append(words, fmt.Sprintf("%.2f", v))
+// sizes writes two lengths or three: 8.00 × 8.00 × 4.90 mm.
+func sizes(mm ...float64) words.Text {
+	if len(mm) == 2 {
+		return words.Later("%.2f × %.2f mm", mm[0], mm[1])
 	}
-	return strings.Join(words, " × ") + " mm"
+	return words.Later("%.2f × %.2f × %.2f mm", mm[0], mm[1], mm[2])
 }
 
 // Sizes returns what to measure before the stone leaves a side.
 func (s *Sheet) Sizes(side facets.Side) []Size {
-	m := &s.Measures
+	in, m := s.Words, &s.Measures
 	var all []Size
 	if s.girdleCutOn(side) {
 		all = append(all, s.across(side)...)
 		if m.Round {
-			all = append(all, Size{What: "girdle, corner to corner", MM: m.WidthMM})
+			all = append(all, Size{What: in.Say("girdle, corner to corner"), MM: m.WidthMM})
 		} else {
-			all = append(all, Size{What: "girdle, length", MM: m.LengthMM}, Size{What: "girdle, width", MM: m.WidthMM})
+			all = append(all, Size{What: in.Say("girdle, length"), MM: m.LengthMM}, Size{What: in.Say("girdle, width"), MM: m.WidthMM})
 		}
 	}
-	girdle := Size{What: "girdle thickness, thin to thick", MM: m.GirdleMM.Min, Most: m.GirdleMM.Max}
+	girdle := Size{What: in.Say("girdle thickness, thin to thick"), MM: m.GirdleMM.Min, Most: m.GirdleMM.Max}
 	if side == facets.Pavilion {
-		all = append(all, Size{What: "culet to the girdle's lower line", MM: m.PavilionDepthMM})
+		all = append(all, Size{What: in.Say("culet to the girdle's lower line"), MM: m.PavilionDepthMM})
 		if s.LightModel {
 			return all
 		}
 		all = append(all,
-			Size{What: "rough left above the girdle's lower line, at least",
+			Size{What: in.Say("rough left above the girdle's lower line, at least"),
 				MM: m.DepthMM - m.PavilionDepthMM + s.Rough.AllowanceMM},
-			Size{What: "culet to the dop side, at least", MM: m.DepthMM + s.Rough.AllowanceMM},
+			Size{What: in.Say("culet to the dop side, at least"), MM: m.DepthMM + s.Rough.AllowanceMM},
 		)
 		if m.CuletWidthMM > 0 {
-			all = append(all, Size{What: "culet flat", MM: m.CuletWidthMM})
+			all = append(all, Size{What: in.Say("culet flat"), MM: m.CuletWidthMM})
 		}
 		return all
 	}
-	all = append(all, girdle, Size{What: "girdle's upper line to the table", MM: m.CrownHeightMM})
+	all = append(all, girdle, Size{What: in.Say("girdle's upper line to the table"), MM: m.CrownHeightMM})
 	if m.TableWidthMM > 0 {
-		all = append(all, Size{What: "table width", MM: m.TableWidthMM})
+		all = append(all, Size{What: in.Say("table width"), MM: m.TableWidthMM})
 	}
-	return append(all, Size{What: "table to culet", MM: m.DepthMM})
+	return append(all, Size{What: in.Say("table to culet"), MM: m.DepthMM})
 }
 
 // girdleCutOn reports whether a lasting girdle tier is cut while the side faces the lap.
@@ -90,9 +88,9 @@ func (s *Sheet) across(side facets.Side) []Size {
 			}
 			continue
 		}
-		what := r.Tier.Name + ", across opposite facets"
+		what := s.Words.Say("%s, across opposite facets", r.Tier.Name)
 		if r.Tier.Temporary {
-			what += " (for now)"
+			what = s.Words.Say("%s (for now)", what)
 		}
 		all = append(all, Size{What: what, MM: 2 * r.Solved.Distance * s.Solution.Scale})
 	}
@@ -102,7 +100,7 @@ func (s *Sheet) across(side facets.Side) []Size {
 // farSide returns how far the finished stone reaches from a girdle facet to the other
 // side: what a caliper takes where no facet lies opposite.
 func (s *Sheet) farSide(r *Row) Size {
-	z := Size{What: r.Tier.Name + ", from a facet to the far side", MM: math.Inf(1)}
+	z := Size{What: s.Words.Say("%s, from a facet to the far side", r.Tier.Name), MM: math.Inf(1)}
 	for _, plane := range s.Solution.Planes(s.Plan, r.Number-1) {
 		far := 0.0
 		for _, c := range s.Solution.Stone.Corners {
@@ -115,8 +113,9 @@ func (s *Sheet) farSide(r *Row) Size {
 
 // Checks returns what to tick before the stone leaves a side, in words.
 func (s *Sheet) Checks(side facets.Side) []string {
+	in := s.Words
 	var list []string
-	add := func(format string, args ...any) { list = append(list, fmt.Sprintf(format, args...)) }
+	add := func(k words.Key, args ...any) { list = append(list, in.Say(k, args...)) }
 	var names []string
 	count := 0
 	for i := range s.Rows {
@@ -128,9 +127,9 @@ func (s *Sheet) Checks(side facets.Side) []string {
 	if len(names) == 0 {
 		return nil
 	}
-	all := fmt.Sprintf("All %d facets of %s are cut", count, listed(nil, names))
+	all := in.Say("All %d facets of %s are cut", count, listed(in, names))
 	if count == 1 {
-		all = names[0] + " is cut"
+		all = in.Say("%s is cut", names[0])
 	}
 	add("%s; corners meet within %.2f mm under the loupe", all, facets.VisibleGap)
 	add("No scratch, pit or chip left; polish even in every facet")
@@ -149,9 +148,9 @@ func (s *Sheet) Checks(side facets.Side) []string {
 		}
 		return list
 	}
-	add("Stone and both dops clean, dry and in line; gear locked at %s for the transfer", s.transferSetting())
-	if words := s.overWords(); words != "" && !s.LeaveOut.Indices {
-		add("After transfer: %s", words)
+	add("Stone and both dops clean, dry and in line; gear locked at %s for the transfer", s.transferSetting().In(in))
+	if over := s.overWords(); over != "" && !s.LeaveOut.Indices {
+		add("After transfer: %s", over)
 	}
 	return list
 }
@@ -170,7 +169,8 @@ func (s *Sheet) transferSetting() Setting {
 // the machine's number of each: the check that the transfer kept the index. Among the
 // pairs it takes one whose numbers would show a wrong sense of turning.
 func (s *Sheet) overWords() string {
-	best, words := -1.0, ""
+	in := s.Words
+	best, told := -1.0, ""
 	for i := range s.Rows {
 		c := &s.Rows[i]
 		if c.Facing != facets.Crown || c.Flat || c.Tier.Side == facets.Girdle || c.Tier.Temporary {
@@ -192,14 +192,14 @@ func (s *Sheet) overWords() string {
 				telling = min(telling, half-telling)
 				if telling > best+nearTooth {
 					best = telling
-					words = fmt.Sprintf("%s at %s lies over %s, which was cut at %s",
-						c.Tier.Name, s.Machine.Setting(s.Machine.Shown(index, s.Plan.Gear, facets.Crown)),
-						p.Tier.Name, s.Machine.Setting(s.Machine.Shown(index, s.Plan.Gear, facets.Pavilion)))
+					told = in.Say("%s at %s lies over %s, which was cut at %s",
+						c.Tier.Name, s.Machine.Setting(s.Machine.Shown(index, s.Plan.Gear, facets.Crown)).In(in),
+						p.Tier.Name, s.Machine.Setting(s.Machine.Shown(index, s.Plan.Gear, facets.Pavilion)).In(in))
 				}
 			}
 		}
 	}
-	return words
+	return told
 }
 
 // mirrored reports whether the finished stone is its own mirror image about the
@@ -227,19 +227,17 @@ func (s *Sheet) mirrored() bool {
 
 // turnWords tells how to turn the stone and how the numbers run afterwards.
 func (s *Sheet) turnWords(to facets.Side) string {
-	m := &s.Machine
-	side := "crown"
+	in, m := s.Words, &s.Machine
+	turn := words.Key("Turn the stone: lock the gear at %s, transfer, and cut the crown.")
 	if to == facets.Pavilion {
-		side = "pavilion"
+		turn = "Turn the stone: lock the gear at %s, transfer, and cut the pavilion."
 	}
-	words := fmt.Sprintf("Turn the stone: lock the gear at %s, transfer, and cut the %s.", s.transferSetting(), side)
+	run := words.Key("Crown numbers run as on the pavilion.")
 	switch {
 	case m.CrownReversed && s.mirrored():
-		words += " Crown numbers run the other way round the stone; for this plan that makes no difference."
+		run = "Crown numbers run the other way round the stone; for this plan that makes no difference."
 	case m.CrownReversed:
-		words += " Crown numbers run the other way round the stone. The numbers on this sheet allow for it."
-	default:
-		words += " Crown numbers run as on the pavilion."
+		run = "Crown numbers run the other way round the stone. The numbers on this sheet allow for it."
 	}
-	return words
+	return in.Say(turn, s.transferSetting().In(in)) + " " + in.Say(run)
 }

@@ -1,4 +1,5 @@
-// Package stock is the materials at hand: the bundled table and the user's own file.
+// Package stock is the materials at hand, the bundled table and the user's own file, and
+// what the languages call them and say of them.
 package stock
 
 import (

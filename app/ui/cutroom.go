@@ -43,6 +43,7 @@ func (w *window) buildCutRoom() fyne.CanvasObject {
 	if c.cut == nil {
 		machines, _ := sheet.UserMachines() // without a folder there is the plain machine
 		c.cut = model.NewCut(machines, w.do, w.refreshCut)
+		c.cut.Wish.Language = w.words.Language()
 	}
 	c.cut.SetWords(w.words)
 	c.pages = w.newPageTurner(func(by int) { c.cut.Turn(c.cut.Page + by) }, c.cut.SetWidth)
@@ -74,6 +75,15 @@ func (w *window) cutWishes() fyne.CanvasObject {
 	label := func(s words.Key) fyne.CanvasObject { return newWord(colourDim, theme.SizeNameText, w.words.Say(s)) }
 	heading := func(s words.Key) fyne.CanvasObject {
 		return newWord(theme.ColorNameForeground, theme.SizeNameSubHeadingText, w.words.Say(s)).bold()
+	}
+	var languages []string
+	for _, code := range words.Languages() {
+		languages = append(languages, words.NameOf(code))
+	}
+	language := widget.NewSelect(languages, nil)
+	language.SetSelected(words.NameOf(c.cut.Wish.Language))
+	language.OnChanged = func(string) {
+		change(func(wish *model.CutWish) { wish.Language = words.Languages()[language.SelectedIndex()] })
 	}
 	var papers []string
 	for _, p := range sheet.Papers() {
@@ -126,7 +136,7 @@ func (w *window) cutWishes() fyne.CanvasObject {
 		return container.New(&formRow{}, w.tips.laidOver(label(name), tipOf(name)), o)
 	}
 	wishes := container.New(layout.NewCustomPaddedVBoxLayout(5), heading("Sheet for the bench"),
-		row("Paper", paper), row("Machine", c.machine), row("Indices", order), row("Other gears", c.gears),
+		row("Language", language), row("Paper", paper), row("Machine", c.machine), row("Indices", order), row("Other gears", c.gears),
 		check("Type a quarter larger", c.cut.Wish.Large, func(w *model.CutWish, on bool) { w.Large = on }),
 		check("With maps and ledger", c.cut.Wish.Maps, func(w *model.CutWish, on bool) { w.Maps = on }),
 		gap(1), heading("For a pupil, leave out"),

@@ -10,6 +10,7 @@ import (
 	"fyne.io/fyne/v2/theme"
 
 	"pavilight/app/model"
+	"pavilight/app/stock"
 	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
@@ -170,7 +171,7 @@ func (g *grid) mediaItems(column int) []*fyne.MenuItem {
 		if m.Group != gems.Gas && m.Group != gems.Liquid {
 			continue
 		}
-		item := fyne.NewMenuItem(model.MaterialName(g.words, m), func() {
+		item := fyne.NewMenuItem(stock.NameOf(g.words, m), func() {
 			g.bench.SetAround(column, model.Around{Medium: m, Dish: now.Dish && m.Group == gems.Liquid})
 		})
 		item.Checked = m.Key == now.Medium.Key

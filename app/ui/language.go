@@ -6,16 +6,19 @@ import (
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/lang"
 
+	"pavilight/app/model"
 	"pavilight/app/words"
 )
 
 // setLanguage has the window speak a language from now on, "" for that of the system.
 func (w *window) setLanguage(code string) {
 	w.commitTyping()
+	before := w.words.Language()
 	w.app.Preferences().SetString(languageKey, code)
 	w.words = w.files.words(w.system)
 	w.speakToolkit()
 	w.bench.SetWords(w.words)
+	w.printIn(before)
 	w.build()
 	w.win.SetContent(w.content())
 	w.win.SetMainMenu(w.buildMenu())
@@ -26,6 +29,18 @@ func (w *window) setLanguage(code string) {
 	w.refreshFrom()
 	w.refreshRay()
 	w.enter(w.room)
+}
+
+// printIn has sheet and report speak the window's language, too, unless another was chosen
+// for them than the one that the window spoke before.
+func (w *window) printIn(before string) {
+	now := w.words.Language()
+	if cut := w.cutting.cut; now != before && cut.Wish.Language == before {
+		cut.Change(func(wish *model.CutWish) { wish.Language = now })
+	}
+	if tell := w.telling.tell; now != before && tell.Wish.Language == before {
+		tell.Change(func(wish *model.TellWish) { wish.Language = now })
+	}
 }
 
 // toolkitWords are the texts of the toolkit's own dialogs and menus, by its keys.

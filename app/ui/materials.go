@@ -8,7 +8,7 @@ import (
 	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/widget"
 
-	"pavilight/app/model"
+	"pavilight/app/stock"
 	"pavilight/app/words"
 	"pavilight/gems"
 )
@@ -64,7 +64,7 @@ func (w *window) pickMaterial(title words.Key, then func(*gems.Material)) {
 
 // materialLine names a material with its index and density.
 func materialLine(w *words.Words, m *gems.Material) string {
-	text := model.MaterialName(w, m)
+	text := stock.NameOf(w, m)
 	if n, err := m.Index(gems.LineD); err == nil {
 		text += w.Say("   %.3f", n)
 	}
@@ -86,7 +86,7 @@ func matching(w *words.Words, all []*gems.Material, text string) []*gems.Materia
 	}
 	var found []*gems.Material
 	for _, m := range all {
-		for _, name := range append([]string{m.Key, m.Name, model.MaterialName(w, m)}, m.Names...) {
+		for _, name := range append([]string{m.Key, m.Name, stock.NameOf(w, m)}, m.Names...) {
 			if strings.Contains(strings.ToLower(name), text) {
 				found = append(found, m)
 				break

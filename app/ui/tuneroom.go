@@ -18,6 +18,7 @@ import (
 	"fyne.io/fyne/v2/widget"
 
 	"pavilight/app/model"
+	"pavilight/app/stock"
 	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
@@ -191,11 +192,11 @@ func (w *window) tuneQuestion() fyne.CanvasObject {
 	t.toName = newChooser(theme.SizeNameText, nil)
 	t.toName.setText(w.words.Say("choose…"))
 	if t.tune.To != nil {
-		t.toName.setText(model.MaterialName(w.words, t.tune.To))
+		t.toName.setText(stock.NameOf(w.words, t.tune.To))
 	}
 	t.toName.opens = func() {
 		w.pickMaterial("What to cut it of", func(m *gems.Material) {
-			t.toName.setText(model.MaterialName(w.words, m))
+			t.toName.setText(stock.NameOf(w.words, m))
 			t.tune.To = m
 		})
 	}
@@ -433,7 +434,7 @@ func (w *window) takeTuned() {
 	}
 	name := words.Later("tuned angles")
 	if t.tune.Moved != nil {
-		name = words.Later("move to %s", model.MaterialName(w.words, t.tune.Moved.To))
+		name = words.Later("move to %s", stock.NameOf(w.words, t.tune.Moved.To))
 	}
 	w.bench.Adopt(name, plan)
 	w.enter(lookRoom)
@@ -573,7 +574,7 @@ func (w *window) showSeen() {
 	}
 	t.seenIn, t.seen.Objects = names, nil
 	for i, s := range t.tune.Seen {
-		name := w.words.Within(model.MaterialName(w.words, s.Medium))
+		name := w.words.Within(stock.NameOf(w.words, s.Medium))
 		if s.Dish {
 			name = w.words.Say("a dish of %s", name)
 		}

@@ -15,6 +15,7 @@ import (
 
 	"pavilight/app/model"
 	"pavilight/app/solid"
+	"pavilight/app/stock"
 	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/trace"
@@ -467,7 +468,7 @@ func (w *window) onPlan() {
 	w.width.show(plan.WidthMM)
 	name := plan.Material.Name
 	if m, err := w.bench.MaterialOf(plan.Material); err == nil {
-		name = model.MaterialName(w.words, m)
+		name = stock.NameOf(w.words, m)
 	}
 	w.material.setText(name)
 	w.list.refresh()

@@ -118,11 +118,11 @@ func (w *Words) Say(k Key, args ...any) string {
 	return fmt.Sprintf(text, said...)
 }
 
-// Among says a text that comes from a package which speaks English, where it is among keys;
-// another stands as it is.
+// Among says a text that comes from a package which speaks English, where it is among keys
+// without their remarks; another stands as it is.
 func (w *Words) Among(keys []Key, text string) string {
-	if k := Key(text); slices.Contains(keys, k) {
-		return w.Say(k)
+	if i := slices.IndexFunc(keys, func(k Key) bool { return k.English() == text }); i >= 0 {
+		return w.Say(keys[i])
 	}
 	return text
 }
