@@ -120,6 +120,7 @@ complete -c pavilight -n '__fish_seen_subcommand_from cut' -l material -x -a 'ac
 complete -c pavilight -n '__fish_seen_subcommand_from cut' -l hull -d 'Take the convex hull of a scan that has dents or holes'
 complete -c pavilight -n '__fish_seen_subcommand_from cut' -l width -x -d 'The stones width, 0.1 to 1000 mm, in place of what the plan says'
 complete -c pavilight -n '__fish_seen_subcommand_from cut' -l machine -x -d 'The machine that the numbers are for'
+complete -c pavilight -n '__fish_seen_subcommand_from cut' -l language -x -a 'en de fr' -d 'The sheets language'
 complete -c pavilight -n '__fish_seen_subcommand_from cut' -l paper -x -a 'a4 a5 letter' -d 'The paper'
 complete -c pavilight -n '__fish_seen_subcommand_from cut' -l large -d 'Set type a quarter larger'
 complete -c pavilight -n '__fish_seen_subcommand_from cut' -l order -x -a 'lap opposites' -d 'The order of a tiers indices'

@@ -21,7 +21,7 @@ func (d *document) pdf(w io.Writer) error {
 	out := drawing.Document{
 		Title: d.fileTitle(), Author: d.cover.Author, Subject: d.words.say("report"), Creator: d.cover.Program,
 		Language: d.cover.Language,
-		Date: d.cover.Date, Pages: d.pages(),
+		Date:     d.cover.Date, Pages: d.pages(),
 	}
 	return out.PDF(w)
 }
