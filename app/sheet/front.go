@@ -124,7 +124,7 @@ func (s *Sheet) materialWords() string {
 	if m.Cleavage != "" {
 		split = in.Say("cleavage: %s", stock.CleavageOf(in, m))
 	}
-	return joined("; ", strings.Join(told, ", "), split)
+	return joined(in.Say("; "), strings.Join(told, ", "), split)
 }
 
 func (s *Sheet) roughWords() string {
@@ -136,12 +136,12 @@ func (s *Sheet) roughWords() string {
 	volume, told := s.Rough.VolumeMM3, in.Text(s.Rough.Words)
 	if volume == 0 {
 		volume = box[0] * box[1] * box[2]
-		told = joined("; ", told, in.Say("smallest box with %.2f mm all round %s", s.Rough.AllowanceMM, least))
+		told = joined(in.Say("; "), told, in.Say("smallest box with %.2f mm all round %s", s.Rough.AllowanceMM, least))
 	}
 	if c, ok := s.Carats(volume); ok {
 		told = joined(", ", told, in.Say("%.2f ct", c))
 	}
-	told = joined("; ", told, in.Say("yield %.0f %%", 100*s.Measures.VolumeMM3/volume))
+	told = joined(in.Say("; "), told, in.Say("yield %.0f %%", 100*s.Measures.VolumeMM3/volume))
 	if s.Rough.TooSmall {
 		told = in.Say("%s. It does not hold the stone along its axes, which needs %s", told, least)
 	}
@@ -169,7 +169,7 @@ func (s *Sheet) machineWords() string {
 	if m.CrownReversed {
 		run = "crown numbers reversed, transfer at %s"
 	}
-	return strings.Join(append(told, in.Say(run, s.transferSetting().In(in))), "; ")
+	return strings.Join(append(told, in.Say(run, s.transferSetting().In(in))), in.Say("; "))
 }
 
 // mostFactLines is how long a fact may be on the front page.
@@ -197,20 +197,34 @@ func (l *press) threeViews() {
 	in, stone := l.sheet.Words, l.sheet.Solution.Stone
 	_, extent := middleOf(stone)
 	t := l.body()
-	gap := 6.0
-	heights := 0.0
-	for _, k := range []words.Key{"crown %.2f", "girdle %.2f", "pavilion %.2f"} {
-		heights = max(heights, t.Width(in.Say(k, 10.0))+7)
+	const usual, closest = 6.0, 1.5 // mm between the views
+	heights, label := 0.0, 0.0
+	for _, b := range l.sheet.bands() {
+		heights = max(heights, t.Width(in.Say(b.what, 10.0))+7)
+		if b.seen() {
+			label = max(label, t.Width(in.Say(b.what, b.high)))
+		}
 	}
 	height := min(0.2*l.sheet.Paper.Height, 52)
-	scale := roundScale(min(height/extent[0], height/extent[2], (l.width()-heights-2*gap)/(3*extent[1])))
-	above := in.Say("from above, drawn %s : 1", trimmed(in, scale, 2))
+	scale := roundScale(min(height/extent[0], height/extent[2], (l.width()-heights-2*usual)/(3*extent[1])))
 	below, side := in.Say("from below"), in.Say("from the side")
 	cell := func(words string) float64 { return max(scale*extent[1], t.Width(words)) }
+	// On narrow paper the words may be wider than the views: these stand closer, and are
+	// drawn smaller if need be.
+	var above string
+	var gap float64
+	for {
+		above = in.Say("from above, drawn %s : 1", trimmed(in, scale, 2))
+		gap = min(usual, (l.width()-heights-cell(above)-cell(below)-cell(side))/2)
+		across := cell(above) + cell(below) + 2*max(closest, gap) + (cell(side)+scale*extent[1])/2 + bandsAway + label
+		smaller := roundScale(0.99 * scale)
+		if across <= l.width() || smaller == 0 {
+			break
+		}
+		scale = smaller
+	}
+	gap = max(closest, gap)
 	tall := scale * max(extent[0], extent[2])
-	// On narrow paper the words may be wider than the views, and the views stand closer.
-	const least = 1.5
-	gap = max(least, min(gap, (l.width()-heights-cell(above)-cell(below)-cell(side))/2))
 	l.need(tall + 3*t.Leading())
 	middle := l.y + tall/2 + 1
 	x := l.left()
@@ -228,27 +242,41 @@ func (l *press) threeViews() {
 		l.page.Write(t, pale(), drawing.Middle, pt(at.X, l.y+tall+2+t.Leading()), look.words)
 		x += cell(look.words) + gap
 		if look.words == side {
-			l.heights(&v, at.X+scale*extent[1]/2+1.5)
+			l.heights(&v, at.X+scale*extent[1]/2)
 		}
 	}
 	l.y += tall + 2*t.Leading() + 2.5
 }
 
+// band is a part of the stone's height.
+type band struct {
+	what     words.Key // with its height to be filled in
+	high     float64   // mm
+	from, to float64   // z, mm
+}
+
+// seen reports whether the band is high enough to see.
+func (b band) seen() bool { return b.to-b.from >= 0.005 }
+
+// bands returns crown, girdle and pavilion.
+func (s *Sheet) bands() []band {
+	m, g := &s.Measures, s.Measures.GirdleHeightMM
+	return []band{
+		{"crown %.2f", m.CrownHeightMM, g.Max, g.Max + m.CrownHeightMM},
+		{"girdle %.2f", g.Max - g.Min, g.Min, g.Max},
+		{"pavilion %.2f", m.PavilionDepthMM, g.Min - m.PavilionDepthMM, g.Min},
+	}
+}
+
+// bandsAway is how far from the view from the side the heights are written, mm.
+const bandsAway = 5.1
+
 // heights writes the heights of crown, girdle and pavilion beside the view from the
-// side. A line leads from each to its place.
+// side, which ends at x. A line leads from each to its place.
 func (l *press) heights(v *View, x float64) {
-	in, m := l.sheet.Words, &l.sheet.Measures
-	g := m.GirdleHeightMM
-	type band struct {
-		words    string
-		from, to float64 // z, mm
-	}
-	bands := []band{
-		{in.Say("crown %.2f", m.CrownHeightMM), g.Max, g.Max + m.CrownHeightMM},
-		{in.Say("girdle %.2f", g.Max-g.Min), g.Min, g.Max},
-		{in.Say("pavilion %.2f", m.PavilionDepthMM), g.Min - m.PavilionDepthMM, g.Min},
-	}
-	bands = slices.DeleteFunc(bands, func(b band) bool { return b.to-b.from < 0.005 }) // nothing to see
+	x += 1.5
+	in := l.sheet.Words
+	bands := slices.DeleteFunc(l.sheet.bands(), func(b band) bool { return !b.seen() })
 	t := l.body()
 	s1 := drawing.Style{Stroke: drawing.Grey(0x40), Width: thin}
 	y := make([]float64, len(bands))
@@ -265,7 +293,7 @@ func (l *press) heights(v *View, x float64) {
 		}
 		l.page.Line(s1, pt(x+1, top), pt(x+1, bottom))
 		l.page.Line(s1, pt(x+1, (top+bottom)/2), pt(x+3, y[i]))
-		l.page.Write(t, black(), drawing.Left, pt(x+3.6, y[i]+t.Height()/2), b.words)
+		l.page.Write(t, black(), drawing.Left, pt(x+bandsAway-1.5, y[i]+t.Height()/2), in.Say(b.what, b.high))
 	}
 }
 
@@ -290,6 +318,12 @@ func (l *press) maps() {
 	}
 	beside := l.width() > (25+14*columns+70)*l.k
 	edge := min((l.width()-26*l.k)/(2*columns)-2, 27)
+	// Long names in the ledger take from the maps, as long as something is left of those.
+	ledger := l.ledgerColumns()
+	if room := (l.width()-names-11*l.k-ledger.least(len(light.Columns)))/columns - 2; beside && room < edge {
+		const least = 14 // mm
+		edge, beside = room, room >= least
+	}
 	rows := 2 + int(trace.Unresolved) + 1
 	table := float64(rows) * t.Leading()
 	height := max(t.Leading()+2*edge+3, table) + 1
@@ -314,9 +348,9 @@ func (l *press) maps() {
 		l.scale(q.map_, pt(x+names+columns*(edge+2), y), edge)
 	}
 	if beside {
-		l.ledger(x+names+columns*(edge+2)+11*l.k, top)
+		l.ledger(x+names+columns*(edge+2)+11*l.k, top, ledger)
 	} else {
-		l.ledger(x, top+t.Leading()+2*edge+4)
+		l.ledger(x, top+t.Leading()+2*edge+4, ledger)
 	}
 	l.y = top + height
 }
@@ -371,15 +405,39 @@ func paletted(field []float32, pixels int, m *picture.ColourMap) image.Image {
 	return img
 }
 
+// ledgerColumns are the least widths of the ledger's columns, mm: that of the names of
+// its rows, and those of the numbers, with the white before them.
+type ledgerColumns struct{ names, numbers float64 }
+
+// least returns the least width of a ledger with so many columns of numbers.
+func (c ledgerColumns) least(columns int) float64 { return c.names + float64(columns)*c.numbers }
+
+func (l *press) ledgerColumns() ledgerColumns {
+	const white = 1.5 // mm
+	in, t := l.sheet.Words, l.body()
+	c := ledgerColumns{names: 25 * l.k}
+	for _, k := range []words.Key{"critical angle", "windowed area"} {
+		c.names = max(c.names, t.Width(in.Say(k))+white)
+	}
+	for q := trace.Surface; q <= trace.Absorbed; q++ {
+		c.names = max(c.names, t.Width(in.Say(shareName(q)))+white)
+	}
+	for i := range l.sheet.Light.Columns {
+		head := l.strong().Width(columnName(in, &l.sheet.Light.Columns[i]))
+		c.numbers = max(c.numbers, head+white, t.Width(in.Say("%.3f", 1.0))+white)
+	}
+	return c
+}
+
 // ledger sets the numbers beside the maps.
-func (l *press) ledger(x, y float64) {
+func (l *press) ledger(x, y float64, columns ledgerColumns) {
 	light := l.sheet.Light
 	in, t := l.sheet.Words, l.body()
-	wide := (l.right() - x - 25*l.k) / float64(len(light.Columns))
+	wide := (l.right() - x - columns.names) / float64(len(light.Columns))
 	row := func(name string, cell func(c *trace.Column) string, t drawing.Type) {
 		l.page.Write(l.body(), black(), drawing.Left, pt(x, y+0.78*t.Leading()), name)
 		for i := range light.Columns {
-			l.page.Write(t, black(), drawing.Right, pt(x+25*l.k+wide*float64(i+1), y+0.78*t.Leading()), cell(&light.Columns[i]))
+			l.page.Write(t, black(), drawing.Right, pt(x+columns.names+wide*float64(i+1), y+0.78*t.Leading()), cell(&light.Columns[i]))
 		}
 		y += t.Leading()
 	}

@@ -169,6 +169,15 @@ func (l *press) lines(t drawing.Type, ink drawing.Ink, x, y, width float64, word
 	return float64(len(wrapped)) * t.Leading()
 }
 
+// longestWord returns the width of a text's longest word.
+func longestWord(t drawing.Type, words string) float64 {
+	longest := 0.0
+	for word := range strings.FieldsSeq(words) {
+		longest = max(longest, t.Width(word))
+	}
+	return longest
+}
+
 // tall returns the height of a text in a column.
 func tall(t drawing.Type, width float64, words string) float64 {
 	return float64(len(t.Wrap(words, width))) * t.Leading()
@@ -191,10 +200,9 @@ func (l *press) short(heading, words string, width float64, most int) string {
 
 // subhead sets a heading within a page, kept together with the given height below it.
 func (l *press) subhead(words string, with float64) {
-	l.need(l.head().Leading() + 2 + with)
+	l.need(tall(l.head(), l.width(), words) + 2 + with)
 	l.y += 1.5 * l.k
-	l.lines(l.head(), black(), l.left(), l.y, l.width(), words)
-	l.y += l.head().Leading() + 0.8*l.k
+	l.y += l.lines(l.head(), black(), l.left(), l.y, l.width(), words) + 0.8*l.k
 }
 
 // paragraph sets a text across the page.

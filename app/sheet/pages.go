@@ -101,9 +101,13 @@ func (l *press) overview(facing facets.Side) {
 	y += 0.5
 	for _, z := range s.Sizes(facing) {
 		value := z.In(in)
-		h := l.lines(l.body(), black(), x, y, width-l.strong().Width(value)-2, z.What)
-		l.page.Write(l.strong(), black(), drawing.Right, pt(x+width, y+l.body().Leading()*0.78), value)
-		y += h + 0.8
+		room, below := width-l.strong().Width(value)-2, 0.0
+		if longestWord(l.body(), z.What) > room { // the value gets a line of its own
+			room, below = width, tall(l.body(), width, z.What)
+		}
+		h := l.lines(l.body(), black(), x, y, room, z.What)
+		l.page.Write(l.strong(), black(), drawing.Right, pt(x+width, y+below+l.body().Leading()*0.78), value)
+		y += max(h, below+l.body().Leading()) + 0.8
 	}
 	// What is left of the column shows the stone from the side, as it lies to the lap.
 	if free := top + edge - y - 2*l.body().Leading(); free > 25 && !s.LeaveOut.Any() {
@@ -302,7 +306,7 @@ func (l *press) cutWords(c columns, r *Row) (main, small string) {
 	if !s.LeaveOut.Any() && r.Tier.Note != "" {
 		parts = append(parts, l.short(in.Say("Notes on tier %s", r.Tier.Name), r.Tier.Note, c.end-c.stop, mostNoteLines))
 	}
-	return main, strings.Join(parts, "; ")
+	return main, strings.Join(parts, in.Say("; "))
 }
 
 // areaWords returns how many facets of the finished stone a tier has and how large they are.
@@ -404,7 +408,7 @@ func (l *press) between(rows []Row) {
 	}
 	l.paragraph(l.strong(), black(), in.Say("Between teeth: %s. Plus is toward higher numbers. "+
 		"Mind the cheater: set it back before the next tier, and cut these facets by eye to their corners.",
-		strings.Join(told, "; ")))
+		strings.Join(told, in.Say("; "))))
 	l.y += 1
 }
 

@@ -18,6 +18,7 @@ import (
 	"github.com/go-gl/mathgl/mgl64"
 
 	"pavilight/app/drawing"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 	"pavilight/testdata"
@@ -222,7 +223,8 @@ func readSetting(word string, gear int) (float64, bool) {
 	return ToGear(float64(tooth)+cheater*float64(gear)/360, gear, gear), true
 }
 
-// hardest are the plans that are set on every paper, the others on one each, in turn:
+// hardest are the plans that are set on every paper and in every language, the others on
+// one each, in turn:
 // the usual round, the most facets, the most tiers, the deepest, the longest, no stone.
 var hardest = []string{"round.toml", "round-star.toml", "pear.toml", "round-step.toml", "marquise.toml", "rod.toml"}
 
@@ -241,9 +243,15 @@ func TestEveryPageIsSound(t *testing.T) {
 					continue
 				}
 				s.Paper, s.Large = paper, large
-				for n, page := range s.Pages() {
-					where := fmt.Sprintf("%s, %s, large %v, page %d", name, paper.Name, large, n+1)
-					checkPage(t, where, page)
+				for k, language := range words.Languages() {
+					if k != (i+turn)%3 && !slices.Contains(hardest, name) {
+						continue
+					}
+					s.Words = words.In(language)
+					for n, page := range s.Pages() {
+						where := fmt.Sprintf("%s, %s, %s, large %v, page %d", language, name, paper.Name, large, n+1)
+						checkPage(t, where, page)
+					}
 				}
 			}
 		}
