@@ -99,6 +99,56 @@ func TestCutTellsTheSteps(t *testing.T) {
 	}
 }
 
+// TestCutSpeaksTheLanguage reads sheets and a booklet's contents; what is told beside them
+// stays English, for scripts read it.
+func TestCutSpeaksTheLanguage(t *testing.T) {
+	one, two := file(t, "one.toml", sized(t)), file(t, "two.toml", sized(t))
+	for _, row := range []struct {
+		language string
+		words    []string // on the pages, beside the plan's own
+	}{
+		{"en", []string{"Cutting sheets, teacher", "Finished", "Quartz, refractive index 1.544 to 1.553"}},
+		{"de", []string{"Schleifblätter, Blatt mit den Antworten", "Fertig", "Quarz, Brechzahl 1,544 bis 1,553"}},
+		{"fr", []string{"Fiches de taille, copie du maître", "Finie", "Quartz, indice de réfraction 1,544 à 1,553"}},
+	} {
+		o, folder := cutInto(t, one, two, "--language", row.language, "--leave-out", "angles", "--as", "pdf,svg", "--json")
+		if o.status != Done {
+			t.Errorf("%s: status %d: %s", row.language, o.status, o.stderr)
+			continue
+		}
+		if !strings.Contains(o.stdout, `"stop": "until `) {
+			t.Errorf("%s: the steps are told as\n%s", row.language, o.stdout)
+		}
+		pdf, err := os.ReadFile(filepath.Join(folder, "one-cut-booklet-teacher.pdf"))
+		if err != nil || !bytes.Contains(pdf, []byte("/Lang ("+row.language+")")) {
+			t.Errorf("%s: the PDF does not say its language (%v)", row.language, err)
+		}
+		var pages strings.Builder
+		for _, name := range namesIn(t, folder) {
+			if strings.HasSuffix(name, ".svg") && strings.Contains(name, "teacher") {
+				text, err := os.ReadFile(filepath.Join(folder, name))
+				if err != nil {
+					t.Fatal(err)
+				}
+				pages.Write(text)
+			}
+		}
+		for _, w := range row.words[1:] {
+			if !strings.Contains(pages.String(), w) {
+				t.Errorf("%s: the pages lack %q", row.language, w)
+			}
+		}
+		title := bytes.Buffer{} // as a PDF writes what is not ASCII
+		title.WriteString("\xfe\xff")
+		for _, r := range row.words[0] {
+			title.Write([]byte{byte(r >> 8), byte(r)})
+		}
+		if !bytes.Contains(pdf, title.Bytes()) {
+			t.Errorf("%s: the title of the PDF is not %s…", row.language, row.words[0])
+		}
+	}
+}
+
 func TestCutIsTheSameTwice(t *testing.T) {
 	t.Setenv("SOURCE_DATE_EPOCH", "1700000000")
 	read := func() []byte {
@@ -169,6 +219,7 @@ func TestCutRefuses(t *testing.T) {
 		words  []string
 	}{
 		{"paper", []string{"--paper", "a3"}, CommandFault, []string{"--paper", "a3", "letter"}},
+		{"language", []string{"--language", "la"}, CommandFault, []string{"--language", "la", "en, de, fr"}},
 		{"order", []string{"--order", "random"}, CommandFault, []string{"--order", "random", "opposites"}},
 		{"kind", []string{"--as", "pdf,doc"}, CommandFault, []string{"--as", "doc", "svg"}},
 		{"parts", []string{"--leave-out", "names"}, CommandFault, []string{"--leave-out", "names", "indices"}},

@@ -11,6 +11,7 @@ import (
 	"testing"
 
 	"pavilight/app/sheet"
+	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/gems"
 )
@@ -93,6 +94,23 @@ func TestTheSheetIsLaidOutAndWritten(t *testing.T) {
 	settle()
 	if text, err := os.ReadFile(path); err != nil || !bytes.HasPrefix(text, []byte("%PDF-")) || len(files) != 1 {
 		t.Errorf("the file begins with %.8q, %v; told %v", text, err, files)
+	}
+}
+
+// The sheet speaks the language that is asked for, whatever the room speaks.
+func TestTheSheetSpeaksTheLanguage(t *testing.T) {
+	c, settle := cutRoom(t, false)
+	c.SetWords(words.In("fr"))
+	c.Change(func(w *CutWish) { w.Language, w.Large = "de", true })
+	settle()
+	if got := c.Sheet.Words.Language(); got != "de" {
+		t.Fatalf("the sheet speaks %s", got)
+	}
+	if got, want := c.Sheet.Sizes(facets.Crown)[0].What, "Dicke der Rundiste, dünn bis dick"; got != want {
+		t.Errorf("it says %q, want %q", got, want)
+	}
+	if s, ok := c.Film(); !ok || s.Title != "Avant la première taille" {
+		t.Errorf("the film beside it begins %q", s.Title)
 	}
 }
 

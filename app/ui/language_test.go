@@ -11,6 +11,7 @@ import (
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
 
+	"pavilight/app/model"
 	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/testdata"
@@ -55,6 +56,29 @@ func TestTheLanguageIsChangedAtOnceAndRemembered(t *testing.T) {
 			t.Errorf("in %q the maps, the solid or the title are empty", tt.code)
 		}
 	}
+}
+
+// TestWhatIsPrintedFollowsTheWindow: sheet and report speak the window's language until
+// another is chosen for them.
+func TestWhatIsPrintedFollowsTheWindow(t *testing.T) {
+	r := inCut(t, fyne.NewSize(usualWidth, usualHeight))
+	cut, tell := r.cutting.cut, r.telling.tell
+	speaks := func(sheet, report string) {
+		t.Helper()
+		r.until(t, "the sheet in "+sheet, func() bool { return cut.Ready() && cut.Sheet.Words.Language() == sheet })
+		if cut.Wish.Language != sheet || tell.Wish.Language != report {
+			t.Errorf("wanted are a sheet in %s and a report in %s, want %s and %s", cut.Wish.Language, tell.Wish.Language, sheet, report)
+		}
+	}
+	speaks("en", "en")
+	r.setLanguage("de")
+	speaks("de", "de")
+	cut.Change(func(w *model.CutWish) { w.Language = "fr" })
+	r.setLanguage("en")
+	speaks("fr", "en")
+	r.setLanguage("fr")
+	r.setLanguage("de")
+	speaks("de", "de") // chosen was what the window came to speak, and it goes on from there
 }
 
 // cutWords returns what is written into less room than it takes, in what is seen of o.

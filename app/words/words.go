@@ -1,7 +1,7 @@
-// Package words says what people read in the window in their language. A text is written
-// where it is used, in English; that text is its key, and a catalog per language, a TOML
-// file beside this one, says it in the other languages. Numbers filled in have the
-// decimal mark of the language.
+// Package words says what people read in the window and on the sheet for the bench in
+// their language. A text is written where it is used, in English; that text is its key,
+// and a catalog per language, a TOML file beside this one, says it in the other languages.
+// Numbers filled in have the decimal mark of the language.
 package words
 
 import (
