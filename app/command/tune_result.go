@@ -602,7 +602,7 @@ func (t *tuning) front() error {
 			line(p, "")
 		}
 		tab.Flush()
-		fmt.Fprintf(t.out, "\n%d stones looked at. No stone seen beats one of these in both. To take one, vary by its values and --write it.\n", f.Tried)
+		fmt.Fprintf(t.out, "\n%d stones looked at. No stone seen beats one of those found in both. To take one, vary by its values and --write it.\n", f.Tried)
 		t.printWritten()
 	})
 }

@@ -105,6 +105,7 @@ type Tune struct {
 	StartPicture  *image.RGBA // light return as the stone stands; nil before it is traced
 	BestPicture   *image.RGBA // light return of the best so far
 	Outcome       *tune.Outcome
+	Bodies        [2]*facets.Measures // of the outcome: as the stone stands, and of the best; nil where there is no stone
 	Field         *tune.Field
 	Tolerance     *tune.Tolerance
 	Front         *tune.Front
@@ -303,6 +304,7 @@ func (t *Tune) Begin() {
 	t.Stop()
 	t.Trouble, t.Stopped, t.Start, t.Best, t.StartPicture, t.BestPicture = nil, false, nil, nil, nil, nil
 	t.Outcome, t.Field, t.Tolerance, t.Front, t.Moved, t.Pick, t.Chart = nil, nil, nil, nil, nil, nil, nil
+	t.Bodies = [2]*facets.Measures{}
 	t.painter.forget()
 	p, err := t.problem()
 	if err == nil && t.Task == ShowField && len(p.Variables) != 2 {
@@ -519,8 +521,9 @@ func (r *tuneRun) search(ctx context.Context, memory *tune.Memory) error {
 	<-painted
 	if o != nil {
 		last := r.picture(context.WithoutCancel(ctx), &o.Best)
+		bodies := [2]*facets.Measures{r.body(&o.Start), r.body(&o.Best)}
 		r.hand(func(t *Tune) {
-			t.Outcome, t.Start, t.Best = o, &o.Start, &o.Best
+			t.Outcome, t.Start, t.Best, t.Bodies = o, &o.Start, &o.Best, bodies
 			if last != nil {
 				t.BestPicture = last
 			}
@@ -552,12 +555,8 @@ func (r *tuneRun) paintBest(ctx context.Context) {
 	}
 }
 
-// tunePixels is the edge of the two pictures.
-const tunePixels = 240
-
-// picture paints the light return of a trial, of the plan as it stands for nil; nil if it
-// cannot be had.
-func (r *tuneRun) picture(ctx context.Context, trial *tune.Trial) *image.RGBA {
+// stone returns that of a trial, of the plan as it stands for nil.
+func (r *tuneRun) stone(trial *tune.Trial) (*facets.Stone, error) {
 	var names []string
 	var values []float64
 	if trial != nil {
@@ -566,7 +565,26 @@ func (r *tuneRun) picture(ctx context.Context, trial *tune.Trial) *image.RGBA {
 		}
 		values = trial.Values
 	}
-	stone, err := r.problem.Pattern.Build(names, values)
+	return r.problem.Pattern.Build(names, values)
+}
+
+// body returns the measures of a trial's stone, nil if there is none.
+func (r *tuneRun) body(trial *tune.Trial) *facets.Measures {
+	stone, err := r.stone(trial)
+	if err != nil {
+		return nil
+	}
+	m := stone.Measure()
+	return &m
+}
+
+// tunePixels is the edge of the two pictures.
+const tunePixels = 240
+
+// picture paints the light return of a trial, of the plan as it stands for nil; nil if it
+// cannot be had.
+func (r *tuneRun) picture(ctx context.Context, trial *tune.Trial) *image.RGBA {
+	stone, err := r.stone(trial)
 	if err != nil {
 		return nil
 	}

@@ -1,6 +1,7 @@
 package model
 
 import (
+	"fmt"
 	"strings"
 	"sync"
 	"testing"
@@ -126,8 +127,17 @@ func TestTuneRoomFindsBetter(t *testing.T) {
 		t.Errorf("kept %v of %v", plan.Tiers[1].Angle, room.Best.Values)
 	}
 	lines := room.Changes()
-	if len(lines) != 1 || lines[0][0] != "P" || !strings.HasPrefix(lines[0][1], "40.00° to ") || !strings.HasSuffix(lines[0][1], "steeper") {
+	if len(lines) != 3 || lines[0][0] != "P" || !strings.HasPrefix(lines[0][1], "40.00° to ") || !strings.HasSuffix(lines[0][1], "steeper") {
 		t.Errorf("%q", lines)
+	}
+	before, after := room.Bodies[0], room.Bodies[1]
+	if after.DepthPercent <= before.DepthPercent { // a steeper pavilion is deeper
+		t.Errorf("depth %v to %v", before.DepthPercent, after.DepthPercent)
+	}
+	density := room.material.Density
+	want := fmt.Sprintf("%.3f to %.3f ct", before.Carats(density), after.Carats(density))
+	if lines[1] != [2]string{"Weight", want} || lines[2][0] != "Depth" || !strings.HasSuffix(lines[2][1], "% of width") {
+		t.Errorf("%q, want a weight of %s", lines[1:], want)
 	}
 }
 

@@ -104,7 +104,8 @@ func (t *Tune) changeWords(v tune.Variable, by float64) string {
 	return t.words.Say("%+.3f", by)
 }
 
-// Changes tells a cutter what the answer changes: a name and what becomes of it.
+// Changes tells a cutter what the answer changes, and what that does to weight and depth: a
+// name and what becomes of it.
 func (t *Tune) Changes() [][2]string {
 	shown := t.Shown()
 	if t.Moved != nil && len(t.Moved.Found.Values) > 0 {
@@ -113,7 +114,16 @@ func (t *Tune) Changes() [][2]string {
 	if shown == nil || len(shown.Values) != len(t.variablesUsed) {
 		return nil
 	}
-	return t.changes(t.variablesUsed, shown.Values)
+	lines := t.changes(t.variablesUsed, shown.Values)
+	if before, after := t.Bodies[0], t.Bodies[1]; before != nil && after != nil && t.Pick == nil {
+		if density := t.material.Density; density > 0 {
+			lines = append(lines, [2]string{t.words.Say("Weight"),
+				t.words.Say("%.3f to %.3f ct", before.Carats(density), after.Carats(density))})
+		}
+		lines = append(lines, [2]string{t.words.Say("Depth"),
+			t.words.Say("%.2f to %.2f %% of width", before.DepthPercent, after.DepthPercent)})
+	}
+	return lines
 }
 
 func (t *Tune) changes(vs []tune.Variable, values []float64) (lines [][2]string) {

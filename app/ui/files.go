@@ -44,7 +44,7 @@ func (w *window) open(path string) {
 func (w *window) openSample(name string) {
 	text, err := fs.ReadFile(testdata.Plans(), name)
 	if err != nil {
-		w.explain("The sample %s cannot be opened", err, name)
+		w.explain("The plan %s cannot be opened", err, name)
 		return
 	}
 	w.openText(text, name)
@@ -54,7 +54,7 @@ func (w *window) openSample(name string) {
 func (w *window) openText(text []byte, name string) {
 	w.commitTyping()
 	if err := w.bench.OpenText(text, name); err != nil {
-		w.explain("The sample %s cannot be opened", err, name)
+		w.explain("The plan %s cannot be opened", err, name)
 		return
 	}
 	w.afterOpening()

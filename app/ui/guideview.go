@@ -28,7 +28,7 @@ func (w *window) showGuide(page guide.Page) {
 		lines := widget.NewLabelWithStyle(strings.TrimSuffix(part.Text, "\n"), fyne.TextAlignLeading, fyne.TextStyle{Monospace: true})
 		lines.Selectable = true
 		lines.SizeName = theme.SizeNameCaptionText
-		lines.Wrapping = fyne.TextWrapBreak // the lines fit; one that slides sideways would keep the wheel for itself
+		lines.Wrapping = fyne.TextWrapWord // one that slides sideways would keep the wheel for itself
 		all.Add(container.New(layout.NewCustomPaddedLayout(0, 0, 18, 0), lines))
 		if part.Kind == "toml" {
 			open := widget.NewButton(w.words.Say("Open this plan"), func() {
@@ -41,7 +41,7 @@ func (w *window) showGuide(page guide.Page) {
 		}
 	}
 	size := w.win.Canvas().Size()
-	room := container.NewGridWrap(fyne.NewSize(min(820, size.Width-80), min(640, size.Height-160)), container.NewVScroll(all))
+	room := container.NewGridWrap(fyne.NewSize(min(900, size.Width-80), min(640, size.Height-160)), container.NewVScroll(all))
 	note := newLine(colourDim, theme.SizeNameCaptionText).with(w.words.Say("What follows a $ is typed in a terminal, in the folder of your plans."))
 	d = dialog.NewCustom(page.Title, w.words.Say("Close"), container.NewBorder(nil, note, nil, nil, room), w.win)
 	w.raise(d)

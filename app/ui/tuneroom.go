@@ -204,7 +204,7 @@ func (w *window) tuneQuestion() fyne.CanvasObject {
 	t.choices = container.New(layout.NewCustomPaddedVBoxLayout(3))
 	t.vary = column(heading("What may vary"),
 		newLine(colourDim, theme.SizeNameCaptionText).with(w.words.Say("ticked tiers, between these limits; corners are kept")), t.choices)
-	t.limits = column(append([]fyne.CanvasObject{heading("Limits of the lap")}, w.limitRows(row)...)...)
+	t.limits = column(append([]fyne.CanvasObject{heading("Limits of the stone")}, w.limitRows(row)...)...)
 	t.slips = column(append([]fyne.CanvasObject{heading("Errors of machine and hand"),
 		newLine(colourDim, theme.SizeNameCaptionText).with(w.words.Say("%s; yours may be others", model.MachineSource))}, w.slipRows(row)...)...)
 	t.record = widget.NewCheck(w.recordWords(), nil)
