@@ -14,7 +14,10 @@ type Measures struct {
 	LengthMM float64
 	Ratio    float64 // length over width
 	Round    bool    // whether width and length are taken over the corners
-	DepthMM  float64
+	// LongestMM is the greatest distance between two corners of the outline: what a calliper
+	// shows at most, and a mount must let in.
+	LongestMM float64
+	DepthMM   float64
 
 	DepthPercent         float64
 	TablePercent         float64 // 0 without a table
@@ -60,6 +63,7 @@ func Definitions() []Definition {
 		{"width_mm",
 			"least distance between two parallel lines that hold the outline; over the corners if it is round", trade},
 		{"length_mm", "extent of the outline across the width", trade},
+		{"longest_mm", "greatest distance between two corners of the outline", "geometry"},
 		{"depth_mm", "from the table to the lowest point, along the axis", trade},
 		{"table_percent",
 			"width of the table over the width; corner to corner for a round, across the width otherwise", trade},
@@ -108,7 +112,7 @@ func (s *Stone) Measure() Measures {
 	}
 	o := outlineOf(points)
 	m.WidthMM, m.LengthMM, m.Round = o.width, o.length, o.round
-	m.Ratio = m.LengthMM / m.WidthMM
+	m.Ratio, m.LongestMM = m.LengthMM/m.WidthMM, o.diameter
 	m.DepthMM = high - low
 	m.VolumeMM3 = s.Volume()
 	m.SmallestFacetMM = math.Inf(1)

@@ -75,6 +75,7 @@ func TestMeasureOddShapes(t *testing.T) {
 	}{
 		{"width", m.WidthMM, 2, "2 by 3"},
 		{"length", m.LengthMM, 3, "2 by 3"},
+		{"longest", m.LongestMM, math.Sqrt(4 + 9), "Pythagoras"},
 		{"thin", m.GirdleMM.Min, 1 - slope, "the floor rises to z = tan 10 at x = 1"},
 		{"thick", m.GirdleMM.Max, 1 + slope, "and falls to -tan 10 at x = -1"},
 		{"mean", m.GirdleMM.Mean, 1, "as much above as below"},

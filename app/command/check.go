@@ -24,6 +24,7 @@ type checkResult struct {
 	Facets               []checkFacet `json:"facets"`
 	WidthMM              float64      `json:"width_mm"`
 	LengthMM             float64      `json:"length_mm"`
+	LongestMM            float64      `json:"longest_mm"`
 	DepthMM              float64      `json:"depth_mm"`
 	TablePercent         float64      `json:"table_percent"`
 	CrownHeightPercent   float64      `json:"crown_height_percent"`
@@ -86,6 +87,7 @@ func newCheckResult(s *subject) *checkResult {
 	r := &checkResult{
 		WidthMM:              m.WidthMM,
 		LengthMM:             m.LengthMM,
+		LongestMM:            m.LongestMM,
 		DepthMM:              m.DepthMM,
 		TablePercent:         m.TablePercent,
 		CrownHeightPercent:   m.CrownHeightPercent,
@@ -143,6 +145,7 @@ func printCheck(w io.Writer, s *subject, r *checkResult) {
 	m := &s.measures
 	row("width", "%.3f mm", m.WidthMM)
 	row("length", "%.3f mm, %.4f of the width", m.LengthMM, m.Ratio)
+	row("longest", "%.3f mm from corner to corner", m.LongestMM)
 	row("depth", "%.3f mm, %.2f %% of the width", m.DepthMM, m.DepthPercent)
 	row("table", "%.3f mm, %.2f %%", m.TableWidthMM, m.TablePercent)
 	row("crown height", "%.3f mm, %.2f %%", m.CrownHeightMM, m.CrownHeightPercent)

@@ -252,7 +252,7 @@ func TestLookJSONKeys(t *testing.T) {
 
 func TestCheckJSONKeys(t *testing.T) {
 	object := decoded[json.RawMessage](t, "check")
-	wantKeys(t, "check", object, "facets", "width_mm", "length_mm", "depth_mm", "table_percent", "crown_height_percent",
+	wantKeys(t, "check", object, "facets", "width_mm", "length_mm", "longest_mm", "depth_mm", "table_percent", "crown_height_percent",
 		"pavilion_depth_percent", "girdle_percent", "girdle_height_mm", "volume_mm3", "carats")
 	var parts struct {
 		Facets []json.RawMessage

@@ -39,6 +39,7 @@ func (b *Bench) Facts() [][2]string {
 		{say("Stone"), ""},
 		{say("Width"), say("%.3f mm", m.WidthMM)},
 		{say("Length"), say("%.3f mm", m.LengthMM)},
+		{say("Longest"), say("%.3f mm", m.LongestMM)},
 		{say("Depth"), say("%.3f mm", m.DepthMM)},
 		{say("Table"), say("%.2f %% of width", m.TablePercent)},
 		{say("Crown height"), say("%.2f %%", m.CrownHeightPercent)},

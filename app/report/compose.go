@@ -528,6 +528,9 @@ func (c *composer) measures(f *Findings) {
 	row := func(key string, length, share string) { t.rows = append(t.rows, []string{c.say(key), length, share}) }
 	row("measure.width", mm(m.WidthMM), percent(100))
 	row("measure.length", mm(m.LengthMM), percent(100*m.Ratio))
+	if !m.Round {
+		row("measure.longest", mm(m.LongestMM), percent(100*m.LongestMM/m.WidthMM))
+	}
 	row("measure.depth", mm(m.DepthMM), percent(m.DepthPercent))
 	row("measure.table", mm(m.TableWidthMM), percent(m.TablePercent))
 	row("measure.crown", mm(m.CrownHeightMM), percent(m.CrownHeightPercent))

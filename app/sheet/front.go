@@ -73,6 +73,8 @@ func (l *press) factList() []fact {
 	size := in.Text(sizes(m.LengthMM, m.WidthMM, m.DepthMM))
 	if m.Round {
 		size = in.Say("%.2f mm across, %.2f mm high", m.WidthMM, m.DepthMM)
+	} else {
+		size = in.Say("%s, longest %.2f mm", size, m.LongestMM)
 	}
 	list = append(list, fact{in.Say("Finished"), size})
 	weight := in.Say("%.1f mm³; the material's density is not known", m.VolumeMM3)

@@ -15,6 +15,7 @@ import (
 
 	"pavilight/app/disk"
 	"pavilight/app/model"
+	"pavilight/app/stock"
 	"pavilight/app/words"
 	"pavilight/facets"
 	"pavilight/testdata"
@@ -35,7 +36,7 @@ func (w *window) open(path string) {
 		w.afterOpening()
 		if w.bench.Doc.Path == "" {
 			if m, err := w.bench.MaterialOf(w.bench.Doc.Plan().Material); err == nil {
-				w.report("A scan, taken as %s and in millimetres: choose material and width above.", model.MaterialName(w.words, m))
+				w.report("A scan, taken as %s and in millimetres: choose material and width above.", stock.NameOf(w.words, m))
 			}
 		}
 	})
