@@ -5,6 +5,7 @@ import (
 	"image/color"
 	"math"
 	"slices"
+	"strconv"
 	"strings"
 
 	"github.com/go-gl/mathgl/mgl64"
@@ -326,35 +327,90 @@ func (l *press) maps() {
 		const least = 14 // mm
 		edge, beside = room, room >= least
 	}
-	rows := 2 + int(trace.Unresolved) + 1
-	table := float64(rows) * t.Leading()
-	height := max(t.Leading()+2*edge+3, table) + 1
-	if !beside {
+	room := (l.width() - names - 11*l.k) / columns
+	if beside {
+		room -= ledger.least(len(light.Columns)) / columns
+	} else {
 		edge = min((l.width()-26*l.k)/columns-2, 22)
-		height = 2*t.Leading() + 2*edge + 5 + table
+	}
+	// The maps stand as far apart as their heads need, where there is room for that.
+	apart := edge + 2
+	for i := range light.Columns {
+		apart = max(apart, min(t.Width(columnName(in, &light.Columns[i]))+headsApart, room))
+	}
+	x := l.left()
+	scale := x + names + columns*apart
+	heads := l.heads(t, apart)
+	at := x // of the ledger
+	if beside {
+		at = scale + 11*l.k
+	}
+	table := l.ledgerHeads(at, ledger).height() + float64(2+int(trace.Unresolved))*t.Leading() +
+		tall(t, l.right()-at, l.ledgerNote())
+	height := max(heads.height()+2*edge+3, table) + 1
+	if !beside {
+		height = heads.height() + 2*edge + 5 + table
 	}
 	l.subhead(in.Say("Where the light goes, seen face-up"), height)
 	top := l.y
-	x := l.left()
+	left := func(i int) float64 { return x + names + float64(i)*apart + (apart-(edge+2))/2 }
 	for row, q := range quantities {
-		y := top + t.Leading() + float64(row)*(edge+1.5)
+		y := top + heads.height() + float64(row)*(edge+1.5)
 		l.page.Write(t, pale(), drawing.Left, pt(x, y+edge/2), q.name)
 		for i := range light.Columns {
 			c := &light.Columns[i]
-			at := pt(x+names+float64(i)*(edge+2), y)
-			l.page.Place(paletted(c.Map.Field(q.q), c.Map.Pixels, q.map_), at, edge, edge)
+			l.page.Place(paletted(c.Map.Field(q.q), c.Map.Pixels, q.map_), pt(left(i), y), edge, edge)
 			if row == 0 {
-				l.page.Write(t, pale(), drawing.Middle, pt(at.X+edge/2, top+0.78*t.Leading()), columnName(in, c))
+				heads.write(l.page, i, pale(), drawing.Middle, pt(left(i)+edge/2, top))
 			}
 		}
-		l.scale(q.map_, pt(x+names+columns*(edge+2), y), edge)
+		l.scale(q.map_, pt(scale, y), edge)
 	}
 	if beside {
-		l.ledger(x+names+columns*(edge+2)+11*l.k, top, ledger)
+		l.ledger(at, top, ledger)
 	} else {
-		l.ledger(x, top+t.Leading()+2*edge+4, ledger)
+		l.ledger(at, top+heads.height()+2*edge+4, ledger)
 	}
 	l.y = top + height
+}
+
+// headsApart is the least white between the heads of two columns, mm.
+const headsApart = 2.5
+
+// heads are the names of the light's columns, each in as many lines as it needs.
+type heads struct {
+	type_ drawing.Type
+	lines [][]string
+}
+
+// heads returns the names of the columns for columns of the given width.
+func (l *press) heads(t drawing.Type, width float64) heads {
+	h := heads{type_: t}
+	const rounding = 1e-9 // mm, of a column that is as wide as its head
+	for i := range l.sheet.Light.Columns {
+		h.lines = append(h.lines, t.Wrap(columnName(l.sheet.Words, &l.sheet.Light.Columns[i]), width-headsApart+rounding))
+	}
+	return h
+}
+
+// most returns how many lines the longest head has.
+func (h heads) most() int {
+	n := 0
+	for _, lines := range h.lines {
+		n = max(n, len(lines))
+	}
+	return n
+}
+
+func (h heads) height() float64 { return float64(h.most()) * h.type_.Leading() }
+
+// write sets the head of a column below a point; the last lines of all heads are level.
+func (h heads) write(p *drawing.Page, column int, ink drawing.Ink, align drawing.Align, below drawing.Point) {
+	lines := h.lines[column]
+	for k, line := range lines {
+		down := float64(h.most()-len(lines)+k) + 0.78
+		p.Write(h.type_, ink, align, pt(below.X, below.Y+down*h.type_.Leading()), line)
+	}
 }
 
 // columnName returns what a column is called: the medium by its key.
@@ -362,6 +418,9 @@ func columnName(in *words.Words, c *trace.Column) string {
 	name := stock.KeyOf(in, c.Medium.Key)
 	if name == "" {
 		name = c.Medium.Name
+	}
+	if _, err := strconv.ParseFloat(name, 64); err == nil { // a medium that is nothing but its index
+		name = in.Decimal(name)
 	}
 	if c.Dish {
 		name = in.Say("%s, dish", name)
@@ -415,52 +474,70 @@ type ledgerColumns struct{ names, numbers float64 }
 func (c ledgerColumns) least(columns int) float64 { return c.names + float64(columns)*c.numbers }
 
 func (l *press) ledgerColumns() ledgerColumns {
-	const white = 1.5 // mm
 	in, t := l.sheet.Words, l.body()
 	c := ledgerColumns{names: 25 * l.k}
 	for _, k := range []words.Key{"critical angle", "windowed area"} {
-		c.names = max(c.names, t.Width(in.Say(k))+white)
+		c.names = max(c.names, t.Width(in.Say(k))+headsApart)
 	}
 	for q := trace.Surface; q <= trace.Absorbed; q++ {
-		c.names = max(c.names, t.Width(in.Say(shareName(q)))+white)
+		c.names = max(c.names, t.Width(in.Say(shareName(q)))+headsApart)
 	}
 	for i := range l.sheet.Light.Columns {
 		head := l.strong().Width(columnName(in, &l.sheet.Light.Columns[i]))
-		c.numbers = max(c.numbers, head+white, t.Width(in.Say("%.3f", 1.0))+white)
+		c.numbers = max(c.numbers, head+headsApart, t.Width(in.Say("%.3f", 1.0))+headsApart)
 	}
 	return c
+}
+
+// wide returns how wide the columns of numbers are where the ledger begins at x.
+func (c ledgerColumns) wide(l *press, x float64) float64 {
+	return (l.right() - x - c.names) / float64(len(l.sheet.Light.Columns))
+}
+
+// ledgerHeads returns the heads of the columns of a ledger that begins at x.
+func (l *press) ledgerHeads(x float64, c ledgerColumns) heads {
+	return l.heads(l.strong(), c.wide(l, x))
 }
 
 // ledger sets the numbers beside the maps.
 func (l *press) ledger(x, y float64, columns ledgerColumns) {
 	light := l.sheet.Light
 	in, t := l.sheet.Words, l.body()
-	wide := (l.right() - x - columns.names) / float64(len(light.Columns))
-	row := func(name string, cell func(c *trace.Column) string, t drawing.Type) {
-		l.page.Write(l.body(), black(), drawing.Left, pt(x, y+0.78*t.Leading()), name)
+	wide := columns.wide(l, x)
+	right := func(i int) float64 { return x + columns.names + wide*float64(i+1) }
+	row := func(name string, cell func(c *trace.Column) string) {
+		l.page.Write(t, black(), drawing.Left, pt(x, y+0.78*t.Leading()), name)
 		for i := range light.Columns {
-			l.page.Write(t, black(), drawing.Right, pt(x+columns.names+wide*float64(i+1), y+0.78*t.Leading()), cell(&light.Columns[i]))
+			l.page.Write(t, black(), drawing.Right, pt(right(i), y+0.78*t.Leading()), cell(&light.Columns[i]))
 		}
 		y += t.Leading()
 	}
-	row("", func(c *trace.Column) string { return columnName(in, c) }, l.strong())
+	heads := l.ledgerHeads(x, columns)
+	for i := range light.Columns {
+		heads.write(l.page, i, black(), drawing.Right, pt(right(i), y))
+	}
+	y += heads.height()
 	for q := trace.Surface; q <= trace.Absorbed; q++ {
-		row(in.Say(shareName(q)), func(c *trace.Column) string { return in.Say("%.3f", q.Of(c.Ledger)) }, t)
+		row(in.Say(shareName(q)), func(c *trace.Column) string { return in.Say("%.3f", q.Of(c.Ledger)) })
 	}
 	row(in.Say("critical angle"), func(c *trace.Column) string {
 		if !c.HasCritical {
 			return in.Say("none")
 		}
 		return in.Say("%.1f°", c.Critical.Degrees())
-	}, t)
-	row(in.Say("windowed area"), func(c *trace.Column) string { return in.Say("%.0f %%", 100*c.WindowedArea) }, t)
-	worst := 0.0
-	for i := range light.Columns {
-		worst = max(worst, light.Columns[i].StandardError.Max())
+	})
+	row(in.Say("windowed area"), func(c *trace.Column) string { return in.Say("%.0f %%", 100*c.WindowedArea) })
+	l.lines(t, pale(), x, y, l.right()-x, l.ledgerNote())
+}
+
+// ledgerNote says what the ledger's numbers are.
+func (l *press) ledgerNote() string {
+	in, worst := l.sheet.Words, 0.0
+	for i := range l.sheet.Light.Columns {
+		worst = max(worst, l.sheet.Light.Columns[i].StandardError.Max())
 	}
-	note := in.Say("shares of a viewing ray, ± %.3f; head of %s° in the way",
+	return in.Say("shares of a viewing ray, ± %.3f; head of %s° in the way",
 		math.Ceil(worst*1000)/1000, trimmed(in, l.sheet.HeadDeg, 1))
-	l.lines(t, pale(), x, y, l.right()-x, note)
 }
 
 // shareName returns what a share of the ledger is called.

@@ -73,16 +73,16 @@ func wordless(plan *facets.Plan) *facets.Plan {
 
 // told fills in what is told of light, in numbers that follow from no machine's rounding.
 // The maps are those of another job.
-func told(t *testing.T, job Job, maps *trace.Result) Job {
+func told(t *testing.T, job Job, maps *trace.Result, media ...string) Job {
 	t.Helper()
 	job.Light = &trace.Result{}
-	for i, key := range []string{"air", "water", "oil"} {
+	for i, key := range media {
 		m, err := gems.Find(key)
 		if err != nil {
 			t.Fatal(err)
 		}
 		share := 0.1 + 0.1*float64(i)
-		c := maps.Columns[i]
+		c := maps.Columns[0]
 		c.Medium, c.WindowedArea = m, share
 		c.HasCritical, c.Critical = i < 2, facets.Angle(34.4+14*float64(i))*facets.Degree
 		c.Ledger = trace.Ledger{Surface: 0.08, Returned: 0.8 - share, Head: 0.1, Leaked: share, Absorbed: 0.02}
@@ -158,7 +158,7 @@ func everyKind(t *testing.T) map[string]Job {
 	maps := lit(t, sampleJob(t, "round.toml")).Light
 	add := func(name string, job Job, change func(*Job)) {
 		job.Plan = wordless(job.Plan)
-		job = told(t, job, maps)
+		job = told(t, job, maps, "air", "water", "oil")
 		job.Program = ""
 		if change != nil {
 			change(&job)
@@ -295,6 +295,22 @@ func TestEveryWordIsOfTheLanguage(t *testing.T) {
 }
 
 var update = flag.Bool("update", false, "write testdata/english.txt anew")
+
+// TestLongNamesOfSurroundings: heads of maps and ledger keep to their columns.
+func TestLongNamesOfSurroundings(t *testing.T) {
+	round := sampleJob(t, "round.toml")
+	s := sheetOf(t, told(t, round, lit(t, round).Light, "air", "immersion-oil", "diiodomethane-sulfur", "carbon-tetrachloride"))
+	for _, language := range words.Languages() {
+		for _, paper := range Papers() {
+			for _, large := range []bool{false, true} {
+				s.Words, s.Paper, s.Large = words.In(language), paper, large
+				for n, page := range s.Pages() {
+					checkPage(t, fmt.Sprintf("%s, %s, large %v, page %d", language, paper.Name, large, n+1), page)
+				}
+			}
+		}
+	}
+}
 
 // TestEnglishStaysAsItIs holds the sheet's English, word for word, each line of each sheet
 // once: nobody who said nothing of languages is to find another sheet. After a change that

@@ -361,11 +361,11 @@ func (l *press) row(c columns, r *Row, height float64) {
 	}
 	l.grid(l.index(), c.index, on(l.index()), c.stop-c.index-columnGap, l.indexWords(r), true)
 	main, note := l.cutWords(c, r)
+	h := 0.0
 	if l.sheet.LeaveOut.Stops {
 		l.blank(c.stop, first, c.end-c.stop)
-		main = ""
+		main, h = "", l.body().Leading()
 	}
-	h := 0.0
 	if main != "" {
 		h = l.lines(l.body(), black(), c.stop, on(l.body()), c.end-c.stop, main)
 	}

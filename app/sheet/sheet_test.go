@@ -905,3 +905,30 @@ func BenchmarkSheet(b *testing.B) {
 		}
 	}
 }
+
+// TestBlanksAreFree holds that a pupil finds nothing on the lines to write on.
+func TestBlanksAreFree(t *testing.T) {
+	job := sampleJob(t, "oval.toml") // with preforms, of which the table says so
+	job.LeaveOut = LeaveOut{Angles: true, Indices: true, Stops: true}
+	blanks := 0
+	for n, page := range sheetOf(t, job).Pages() {
+		for _, m := range page.Marks {
+			line, ok := m.(*drawing.Path)
+			if !ok || line.Stroke != drawing.Grey(0x60) || len(line.Rings[0]) != 2 || line.Rings[0][0].Y != line.Rings[0][1].Y {
+				continue
+			}
+			blanks++
+			from, to := line.Rings[0][0], line.Rings[0][1]
+			for _, m := range page.Marks {
+				text, ok := m.(*drawing.Text)
+				if ok && text.Align == drawing.Left && text.At.X < to.X && text.At.X+text.Type.Width(text.Words) > from.X &&
+					math.Abs(text.At.Y-from.Y) < text.Type.Height() {
+					t.Errorf("page %d: %q stands on a line to write on", n+1, text.Words)
+				}
+			}
+		}
+	}
+	if blanks < 3*len(job.Plan.Tiers) {
+		t.Errorf("%d lines to write on, want three for each of %d tiers", blanks, len(job.Plan.Tiers))
+	}
+}
