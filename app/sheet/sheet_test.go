@@ -231,6 +231,7 @@ var hardest = []string{"round.toml", "round-star.toml", "pear.toml", "round-step
 // TestEveryPageIsSound looks at every mark of every sheet: on the paper, in grey, of
 // readable size, and no words on other words.
 func TestEveryPageIsSound(t *testing.T) {
+	t.Parallel()
 	for i, name := range samplePlans(t) {
 		job := lit(t, sampleJob(t, name))
 		job.Gears = []int{64, 77}
@@ -295,6 +296,10 @@ func checkPage(t *testing.T, where string, page *drawing.Page) {
 				const touch = 0.15 // mm
 				if min(b.right, o.right)-max(b.left, o.left) > touch && min(b.bottom, o.bottom)-max(b.top, o.top) > touch {
 					t.Errorf("%s: %q runs into %q", where, m.Words, o.words)
+				}
+				const apart = 0.5 // mm, between words on one line
+				if gap := max(b.left, o.left) - min(b.right, o.right); math.Abs(b.bottom-o.bottom) < 0.01 && gap > -touch && gap < apart {
+					t.Errorf("%s: %q stands hard by %q", where, m.Words, o.words)
 				}
 			}
 			boxes = append(boxes, b)
