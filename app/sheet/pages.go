@@ -199,9 +199,12 @@ func (l *press) picture() float64 {
 // table sets the steps.
 func (l *press) table(rows []Row) {
 	c := l.columns()
-	l.tableHead(c)
-	for _, part := range l.parts(c, rows) {
+	for i, part := range l.parts(c, rows) {
 		height := l.rowHeight(c, &part)
+		if i == 0 { // never alone at the foot of a page
+			l.need(height + l.strong().Leading() + 0.6)
+			l.tableHead(c)
+		}
 		if l.need(height) {
 			l.tableHead(c)
 		}
