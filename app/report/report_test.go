@@ -374,6 +374,17 @@ func imagesOf(t *testing.T, pdf []byte) (all []image.Image) {
 	return all
 }
 
+// TestPDFSaysItsLanguage: readers that speak a PDF aloud go by it (ISO 32000-1, 14.9.2).
+func TestPDFSaysItsLanguage(t *testing.T) {
+	f := findings(t, small3)
+	for _, language := range Languages() {
+		pdf := written(t, func(w io.Writer) error { return PDF(w, f, cover(language)) })
+		if !bytes.Contains(pdf, []byte("/Lang ("+language+")")) {
+			t.Errorf("a report in %s does not say so", language)
+		}
+	}
+}
+
 // TestPDFSaysTheNumbers: poppler reads the text back, with each figure and both errors.
 func TestPDFSaysTheNumbers(t *testing.T) {
 	tool, err := exec.LookPath("pdftotext")
