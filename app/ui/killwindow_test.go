@@ -91,15 +91,17 @@ func (k *killing) edit(ending bool) *program {
 	for i := range edits {
 		k.typed = append(k.typed, fmt.Sprintf("41.%d", 61+i))
 	}
+	// One click: after Enter all is marked, and what is typed next replaces it. Quick clicks
+	// would be double ones, of which the toolkit tells a moment later, amid the typing.
+	keys := []string{"mousemove", k.x, k.y, "click", "1"}
 	one := func(angle string) []string {
-		return []string{"mousemove", k.x, k.y, "click", "1", "type", "--delay", "8", "--args", "1", angle, "key", "--delay", "8", "Return"}
+		return []string{"type", "--delay", "8", "--args", "1", angle, "key", "--delay", "8", "Return"}
 	}
 	if ending {
-		k.screen.do(one(k.typed[0])...)
+		k.screen.do(append(keys, one(k.typed[0])...)...)
 		time.Sleep(200 * time.Millisecond)
 		return p
 	}
-	var keys []string
 	for _, angle := range k.typed {
 		keys = append(append(keys, one(angle)...), "key", "--delay", "8", "ctrl+s")
 	}
