@@ -41,8 +41,10 @@ func (w *window) showGuide(page guide.Page) {
 		}
 	}
 	size := w.win.Canvas().Size()
-	room := container.NewGridWrap(fyne.NewSize(min(900, size.Width-80), min(640, size.Height-160)), container.NewVScroll(all))
-	note := newLine(colourDim, theme.SizeNameCaptionText).with(w.words.Say("What follows a $ is typed in a terminal, in the folder of your plans."))
+	room := container.NewGridWrap(fyne.NewSize(min(900, size.Width-80), min(640, size.Height-200)), container.NewVScroll(all))
+	note := widget.NewLabel(w.words.Say("What follows a $ is typed in a terminal, in the folder of your plans. " +
+		"Where app/start built the program, write .build/pavilight with its folder before it, or put that folder into PATH."))
+	note.Wrapping, note.SizeName, note.Importance = fyne.TextWrapWord, theme.SizeNameCaptionText, widget.LowImportance
 	d = dialog.NewCustom(page.Title, w.words.Say("Close"), container.NewBorder(nil, note, nil, nil, room), w.win)
 	w.raise(d)
 }

@@ -55,6 +55,7 @@ func TestLicencesAreShown(t *testing.T) {
 // last, and opens the plan that it has people write.
 func TestGuideIsShown(t *testing.T) {
 	r := newRig(t, testdata.Bundled)
+	r.win.Resize(fyne.NewSize(1024, 700))
 	for _, page := range guide.Pages() {
 		r.showGuide(page)
 		top := r.win.Canvas().Overlays().Top()

@@ -574,7 +574,7 @@ func (w *window) showSeen() {
 	}
 	t.seenIn, t.seen.Objects = names, nil
 	for i, s := range t.tune.Seen {
-		name := w.words.Within(stock.NameOf(w.words, s.Medium))
+		name := w.words.Within(stock.ShortOf(w.words, s.Medium))
 		if s.Dish {
 			name = w.words.Say("a dish of %s", name)
 		}
