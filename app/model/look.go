@@ -214,8 +214,8 @@ func (l *Look) SetAround(column int, a Around) {
 	l.restart()
 }
 
-// SetRow lets a row show something else. What is known is painted at once; what is not
-// is traced.
+// SetRow lets a row show something else. What is known is painted on another goroutine and
+// comes a moment later; what is not is traced.
 func (l *Look) SetRow(row int, s Shown) {
 	if l.Row[row] == s {
 		return
@@ -223,7 +223,7 @@ func (l *Look) SetRow(row int, s Shown) {
 	l.Row[row] = s
 	if l.Frame != nil {
 		l.show(l.repaint(l.Frame))
-		l.paintColourLater()
+		l.paintLater()
 	}
 	l.wantExtras()
 	l.onChange(MapsChanged)
@@ -422,26 +422,21 @@ func (l *Look) paint(f Frame) *Frame {
 }
 
 // repaint makes the frame anew for what the rows show now. It is called on the window's
-// goroutine, so what is painted already is copied, not painted again.
+// goroutine, so what is painted already is copied, and the rest is left to paintLater.
 func (l *Look) repaint(f *Frame) *Frame {
 	again := *f
 	again.Row = l.Row
 	again.Pictures = l.buffers.take(len(f.Result.Columns), f.Settings.Pixels)
 	for i := range again.Row {
-		switch {
-		case again.Row[i] == f.Row[i]:
-		case again.Row[i] == TrueColour: // takes too long here: see paintColourLater
-			again.Fields[i], again.Late[i] = nil, true
-			for _, dst := range again.Pictures[i] {
-				clear(dst.Pix)
-			}
-			continue
-		default:
-			l.paintRow(&again, i)
-			continue
+		if again.Row[i] != f.Row[i] {
+			again.Fields[i], again.Late[i], again.Most[i] = nil, true, 1
 		}
 		for j, dst := range again.Pictures[i] {
-			copy(dst.Pix, f.Pictures[i][j].Pix)
+			if again.Row[i] == f.Row[i] {
+				copy(dst.Pix, f.Pictures[i][j].Pix)
+			} else {
+				clear(dst.Pix)
+			}
 		}
 	}
 	return &again
@@ -484,7 +479,7 @@ func (l *Look) arrived(r *run, f *Frame) {
 		l.buffers.giveBack(painted)
 	}
 	l.show(f)
-	l.paintColourLater()
+	l.paintLater()
 	l.onChange(MapsChanged)
 	l.advance()
 }

@@ -198,6 +198,14 @@ func (l *Look) wantExtras() {
 	}
 }
 
+// knows reports whether the frame holds what a row shows.
+func (f *Frame) knows(i int) bool {
+	if _, plain := f.Row[i].Entry(); plain {
+		return f.Result != nil
+	}
+	return f.Seen != nil && f.extras.cover(extrasFor([Rows]Shown{f.Row[i], f.Row[i]}, f.extras.lights))
+}
+
 // paintRow fills in one row of a frame.
 func (l *Look) paintRow(f *Frame, i int) {
 	from := f.Result
@@ -206,7 +214,7 @@ func (l *Look) paintRow(f *Frame, i int) {
 		from = f.Seen
 	}
 	f.Fields[i], f.Late[i], f.Most[i] = nil, true, 1
-	if from == nil || !plain && !f.extras.cover(extrasFor([Rows]Shown{f.Row[i], f.Row[i]}, f.extras.lights)) {
+	if !f.knows(i) {
 		for _, dst := range f.Pictures[i] {
 			clear(dst.Pix) // nothing is known yet
 		}
@@ -286,12 +294,12 @@ func roundAbove(v float64) float64 {
 	return 10 * ten
 }
 
-// paintColourLater paints, on another goroutine, the colours that the frame holds and
-// does not show yet: some hundred thousand of them would hold the window's up.
-func (l *Look) paintColourLater() {
+// paintLater paints, on another goroutine, what the frame holds and does not show yet: some
+// hundred thousand pixels would hold the window's up.
+func (l *Look) paintLater() {
 	f := l.Frame
 	for i := range f.Row {
-		if f.Row[i] == TrueColour && f.Late[i] && f.Seen != nil && f.extras.colour {
+		if f.Late[i] && f.knows(i) {
 			go func() {
 				painted := l.paint(*f)
 				l.do(func() {
