@@ -20,7 +20,7 @@ type Page struct {
 // Part is a stretch of a page.
 type Part struct {
 	// Kind is empty for text in Markdown, "toml" for a file to save, "console" for what to
-	// type after a $ and what answers, "bash" or anything else for other lines to type.
+	// type after a $ and what answers.
 	Kind string
 	File string // of a file to save, its name
 	Text string // without the fences

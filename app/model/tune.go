@@ -268,7 +268,9 @@ func (t *Tune) problem() (*tune.Problem, error) {
 	if t.plan == nil || t.material == nil {
 		return nil, words.Errorf("open a plan that says what it is made of")
 	}
-	p := &tune.Problem{Pattern: tune.PlanPattern{Plan: t.plan}, Material: t.material, Limits: t.Limits, Head: t.head, Seed: 1,
+	plan := t.plan.Clone()
+	plan.File = "" // what is tried stands in no file, so faults name none
+	p := &tune.Problem{Pattern: tune.PlanPattern{Plan: plan}, Material: t.material, Limits: t.Limits, Head: t.head, Seed: 1,
 		Workers: max(1, runtime.GOMAXPROCS(0)-1)} // the window stays alive
 	p.Goal = tune.Goal{Aims: t.Aims, Worst: t.Worst}
 	if t.Task.CanBeSteady() {

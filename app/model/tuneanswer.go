@@ -2,7 +2,6 @@ package model
 
 import (
 	"math"
-	"slices"
 	"strconv"
 	"strings"
 
@@ -32,6 +31,7 @@ func (t *Tune) Kept() (*facets.Plan, bool) {
 			return nil, false
 		}
 		plan := t.Moved.FoundPlan.Clone()
+		plan.File = t.planUsed.File
 		plan.Material = facets.MaterialRef{Key: t.Moved.To.Key}
 		return plan, true
 	}
@@ -148,18 +148,8 @@ func (t *Tune) withError(v, e float64) string {
 	return write(v) + " ± " + write(e)
 }
 
-// why says why a stone does not fit. Its plan stands in no file, so none is named.
-func (t *Tune) why(trial *tune.Trial) string {
-	all := slices.Clone(trial.Words)
-	for i, text := range all {
-		if before, after, ok := strings.Cut(text, "tier \""); ok && t.planUsed != nil && t.planUsed.File != "" {
-			if at := strings.Index(before, t.planUsed.File); at >= 0 {
-				all[i] = before[:at] + "tier \"" + after
-			}
-		}
-	}
-	return strings.Join(all, "; ")
-}
+// why says why a stone does not fit.
+func why(trial *tune.Trial) string { return strings.Join(trial.Words, "; ") }
 
 // TrialWords tells what a stone measures, a line an aim; empty where it was not seen.
 func (t *Tune) TrialWords(trial *tune.Trial) []string {
@@ -167,7 +157,7 @@ func (t *Tune) TrialWords(trial *tune.Trial) []string {
 		return nil
 	}
 	if !trial.Seen {
-		return []string{t.why(trial)}
+		return []string{why(trial)}
 	}
 	var lines []string
 	for i, a := range t.aimsUsed {
@@ -220,9 +210,9 @@ func (t *Tune) outcomeWords(o *tune.Outcome, vs []tune.Variable) (lines []string
 	case !o.Best.Fit:
 		lines = append(lines, t.words.Say("No stone that keeps the limits was found."))
 	case !o.Start.Seen:
-		lines = append(lines, t.words.Say("As it stands there is no such stone: %s.", t.why(&o.Start)))
+		lines = append(lines, t.words.Say("As it stands there is no such stone: %s.", why(&o.Start)))
 	case !o.Start.Fit:
-		lines = append(lines, t.words.Say("As it stands the stone breaks limits: %s.", t.why(&o.Start)))
+		lines = append(lines, t.words.Say("As it stands the stone breaks limits: %s.", why(&o.Start)))
 	case o.Better:
 		lines = append(lines, t.words.Say("Better by %s of the goal: more than chance explains.", t.withError(o.Gain, o.GainError)))
 	case t.Stopped:
@@ -256,7 +246,7 @@ func (t *Tune) outcomeWords(o *tune.Outcome, vs []tune.Variable) (lines []string
 func (t *Tune) fieldWords() (lines []string) {
 	if t.Pick != nil {
 		if !t.Pick.Fit {
-			return []string{t.words.Say("There is no stone that fits here: %s.", t.why(t.Pick))}
+			return []string{t.words.Say("There is no stone that fits here: %s.", why(t.Pick))}
 		}
 		lines = append(lines, t.words.Say("Picked: %s.", strings.Join(t.TrialWords(t.Pick), ", ")))
 	} else if best, ok := t.Field.Best(); ok {
